@@ -1,0 +1,43 @@
+// Response minus reference, sample by sample, in constant memory.
+#pragma once
+
+#include <cstdint>
+#include <optional>
+#include <span>
+
+#include "oracle/measure/sums.hpp"
+
+namespace halflsb {
+
+/// All in value units of the signal (divide by lsb_value() for LSB).
+struct ErrorFigures {
+    std::int64_t samples = 0;
+    double largest = 0.0;             ///< max |e|
+    std::int64_t largest_index = -1;  ///< of the first sample that reaches it; -1 when samples == 0
+    double rms = 0.0;
+    double bias = 0.0;                ///< mean of e
+    bool identical = false;           ///< every e is exactly 0
+    std::optional<double> snr_db;     ///< 10 lg(sum reference^2 / sum e^2); none when identical or the reference is silent
+    std::int64_t first_beyond = -1;   ///< index of the first sample with not (|e| <= limit); -1 when none or no limit
+    std::int64_t beyond = 0;          ///< how many there are
+};
+
+/// Sums are compensated (sums.hpp), in the order of the samples: any split into blocks gives the
+/// same figures, bit for bit.
+class ErrorMeasure {
+public:
+    /// `limit` in value units: a sample is beyond it when not (|e| <= limit), so NaN is beyond.
+    explicit ErrorMeasure(std::optional<double> limit = std::nullopt);
+    /// The next samples; index 0 is the first one added unless first_index says otherwise.
+    void add(std::span<const double> reference, std::span<const double> response);
+    void start_at(std::int64_t first_index);
+    ErrorFigures value() const;
+
+private:
+    std::optional<double> limit_;
+    std::int64_t next_index_ = 0;
+    ErrorFigures figures_;
+    CompensatedSum sum_, sum_squares_, reference_squares_;
+};
+
+}  // namespace halflsb

@@ -1,0 +1,47 @@
+// Frequency response from a stimulus x and the error e = response - design reference:
+//
+//     H(f) = H_design(f) + S_xe(f) / S_xx(f)
+//
+// The closed form carries the bulk, only the small rest is estimated, so the leakage of the window
+// cancels (design 7). Two measures: at the bins of a Welch average (Welch 1967; periodic Hann window,
+// 50 % overlap) for broadband stimuli, and at the exact frequencies of tones.
+#pragma once
+
+#include <complex>
+#include <cstddef>
+#include <cstdint>
+#include <memory>
+#include <span>
+#include <vector>
+
+namespace halflsb {
+
+/// One estimated point of S_xe / S_xx.
+struct ResponsePoint {
+    double cycles_per_sample = 0.0;
+    std::complex<double> difference;  ///< estimated H - H_design
+    double stimulus_power = 0.0;      ///< mean |X|^2 of the windowed segments, for judging coverage
+    std::int64_t averages = 0;
+};
+
+class ResponseMeasure {
+public:
+    virtual ~ResponseMeasure() = default;
+    /// stimulus.size() == error.size(); consecutive samples. Any split into blocks gives the same
+    /// figures, bit for bit.
+    virtual void add(std::span<const double> stimulus, std::span<const double> error) = 0;
+    /// Ascending in frequency.
+    virtual std::vector<ResponsePoint> value() const = 0;
+};
+
+/// Segment length for a record: the largest power of two that gives at least 8 segments, within
+/// 64 .. 4096; the record itself must hold at least one segment of 64.
+std::size_t response_segment_for(std::int64_t length_samples);
+
+/// Bins k / segment, k = 0 .. segment / 2. A last incomplete segment is padded with zeros.
+std::unique_ptr<ResponseMeasure> make_welch_response(std::size_t segment);
+
+/// One point per tone, by correlation with a Hann window over the whole record of known length.
+std::unique_ptr<ResponseMeasure> make_tone_response(std::vector<double> tones_cycles_per_sample, std::int64_t length_samples);
+
+}  // namespace halflsb

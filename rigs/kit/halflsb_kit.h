@@ -1,0 +1,78 @@
+/* SPDX-License-Identifier: 0BSD
+ *
+ * The board's side of the framed wire (docs/wire.md), in C99: no heap, no stdio, no library calls but
+ * memcpy, memmove, memset. The firmware supplies: bytes out, a tick counter, its filters. It calls
+ * halflsb_receive_byte() from its receive interrupt and halflsb_poll() from its main loop.
+ *
+ * Not reentrant: one kit instance, one receive interrupt, one main loop.
+ */
+#ifndef HALFLSB_KIT_H
+#define HALFLSB_KIT_H
+
+#include <stddef.h>
+#include <stdint.h>
+
+#ifdef __cplusplus
+extern "C" {
+#endif
+
+/* The firmware sets these on the compiler's command line when the defaults do not suit. */
+#ifndef HALFLSB_BLOCK_SAMPLES
+#define HALFLSB_BLOCK_SAMPLES 64 /* largest block, 1 .. 4096 */
+#endif
+#ifndef HALFLSB_CREDIT_BLOCKS
+#define HALFLSB_CREDIT_BLOCKS 4 /* blocks in flight, 1 .. 64 */
+#endif
+#ifndef HALFLSB_WORD_BYTES
+#define HALFLSB_WORD_BYTES 4 /* widest sample, times the channels of one instant */
+#endif
+
+enum halflsb_injection { HALFLSB_CALL = 0, HALFLSB_BUFFER = 1, HALFLSB_CONVERTER = 2 };
+enum halflsb_format { HALFLSB_Q15 = 1, HALFLSB_Q31 = 2, HALFLSB_I16 = 3, HALFLSB_I32 = 4, HALFLSB_F32 = 5 };
+
+/* A filter of the firmware. `process` takes `count` instants from `in` and writes as many to `out`;
+ * words are in the machine's own order, in and out never overlap harmfully (out may equal in). */
+struct halflsb_filter {
+    const char *name; /* to 24 bytes */
+    uint8_t injection, input, output, channels_in, channels_out, tables;
+    void (*reset)(void);
+    void (*process)(const void *in, void *out, uint16_t count);
+    /* writes `count` values at `offset` of a table; 0 when out of range. NULL when tables is 0. */
+    int (*load)(uint8_t table, uint16_t offset, const int32_t *values, uint8_t count);
+};
+
+struct halflsb_setting {
+    const char *name; /* to 24 bytes */
+    int32_t minimum, maximum;
+    int32_t *value;
+    void (*changed)(void); /* may be NULL */
+};
+
+struct halflsb_board {
+    const uint8_t *build_id; /* NULL when the image has none */
+    uint8_t build_id_bytes;
+    const char *serial; /* to 24 bytes, "" when there is none */
+    const struct halflsb_filter *filters;
+    uint8_t filter_count;
+    const struct halflsb_setting *settings;
+    uint8_t setting_count;
+    uint32_t tick_hz;
+    uint8_t tick_bits; /* 0: there is no counter */
+    uint32_t (*ticks)(void);
+    /* sends all bytes, waiting as long as the line needs */
+    void (*write)(const uint8_t *bytes, size_t count);
+};
+
+void halflsb_start(const struct halflsb_board *board);
+/* From the receive interrupt, once a byte. */
+void halflsb_receive_byte(uint8_t byte);
+/* From the receive interrupt when the hardware reports an overrun. */
+void halflsb_receive_overrun(void);
+/* Handles at most one frame; returns nonzero when it did, so that the main loop can sleep on zero. */
+int halflsb_poll(void);
+
+#ifdef __cplusplus
+}
+#endif
+
+#endif

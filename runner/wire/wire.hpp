@@ -1,0 +1,95 @@
+// Samples to and from a board, over a link. The framed wire (docs/wire.md) is the first; the loop that
+// feeds it belongs to the caller, so that a run can stop as soon as its rules are decided.
+#pragma once
+
+#include <cstdint>
+#include <span>
+#include <string>
+#include <string_view>
+#include <vector>
+
+#include "runner/world/clock.hpp"
+#include "stimuli/outcome.hpp"
+#include "stimuli/sample_format.hpp"
+
+namespace halflsb {
+
+enum class Injection : std::uint8_t { call = 0, buffer = 1, converter = 2 };
+std::string_view name_of(Injection injection);
+
+struct BoardFilter {
+    std::string name;
+    Injection injection = Injection::call;
+    SampleFormat input, output;
+    int channels_in = 1, channels_out = 1;
+    int nodes = 0, tables = 0;
+};
+
+struct BoardSetting {
+    std::string name;
+    std::int32_t minimum = 0, maximum = 0, value = 0;
+};
+
+/// What a board says of itself.
+struct Greeting {
+    int protocol = 0;
+    std::string build_id;  ///< lower-case hex; "" when it has none
+    std::string serial;
+    std::vector<BoardFilter> filters;
+    std::vector<BoardSetting> settings;
+    int max_block_samples = 0;
+    int credit_blocks = 0;
+    std::uint32_t tick_hz = 0;
+    int tick_bits = 0;
+};
+
+/// What one step of the stream brought, in order; samples may be empty.
+struct Received {
+    std::int64_t first_index = 0;
+    std::vector<Code> samples;
+    std::uint64_t ticks_total = 0;    ///< of these samples
+    std::uint32_t ticks_largest = 0;  ///< of one sample
+};
+
+/// The board's own counters, differences since the stream was opened.
+struct BoardCounters {
+    std::uint32_t frames_bad = 0, bytes_lost = 0, gaps = 0, resent = 0, blocks = 0;
+};
+
+struct WireFigures {
+    std::int64_t bytes_sent = 0, bytes_received = 0;  ///< since the stream was opened
+    std::int64_t frames_bad = 0;                      ///< arrived broken at the host
+    std::int64_t resends = 0;                         ///< times the host sent again
+    Duration streaming{};                             ///< from the first sample sent to the last received
+};
+
+struct WireLimits {
+    Duration greet = seconds(5.0);     ///< for the whole greeting; HELLO is repeated meanwhile
+    Duration answer = seconds(2.0);    ///< without any good frame while answers are due
+    Duration resend = seconds(0.25);   ///< without progress before sending again; at least 3 round trips of a full window are added
+    int block_samples = 256;           ///< asked for; less when the board holds less
+};
+
+class Wire {
+public:
+    virtual ~Wire() = default;
+    virtual Outcome<Greeting> greet() = 0;
+    /// Opens a stream on that filter of the greeting, from reset, sample index 0.
+    virtual Outcome<void> start(std::size_t filter_number) = 0;
+    /// How many samples send() takes now: 0 without credit, else at most a block.
+    virtual std::size_t room_samples() const = 0;
+    virtual void send(std::span<const Code> samples) = 0;
+    /// Resets the filter before the next sample sent. Needs room_samples() > 0.
+    virtual void send_reset() = 0;
+    /// Moves bytes until samples arrived (all that are there, in order), or until `until` passes, or
+    /// until credit came back. Every wait has a deadline: Error kind bench when the board is silent,
+    /// refuses, or was restarted; the problem says what was awaited, how long, and what came instead.
+    virtual Outcome<Received> advance(Instant until) = 0;
+    virtual Outcome<BoardCounters> counters() = 0;
+    virtual WireFigures figures() const = 0;
+    /// For reports: how many bytes a stream of so many samples needs in each direction.
+    virtual std::int64_t bytes_to_board(std::int64_t samples) const = 0;
+    virtual std::int64_t bytes_to_host(std::int64_t samples) const = 0;
+};
+
+}  // namespace halflsb

@@ -1,0 +1,56 @@
+// A known signal: a pure function of its parameters and of the sample's index, so that a span can be
+// filled from anywhere and twice, and gives the same codes on every machine and compiler.
+#pragma once
+
+#include <cstdint>
+#include <memory>
+#include <span>
+#include <string>
+#include <vector>
+
+#include "stimuli/outcome.hpp"
+#include "stimuli/parameter.hpp"
+#include "stimuli/rounding.hpp"
+#include "stimuli/sample_format.hpp"
+
+namespace halflsb {
+
+/// Where a stimulus has power; a response rule asks before anything is streamed.
+struct Spectrum {
+    /// Continuous power between two frequencies, cycles per sample; both 0 when there is none.
+    double from_cycles_per_sample = 0.0;
+    double to_cycles_per_sample = 0.0;
+    /// Single lines, cycles per sample, ascending.
+    std::vector<double> tones;
+};
+
+class Stimulus {
+public:
+    virtual ~Stimulus() = default;
+    /// Values for the indices first_index, first_index + 1, ... as ratios of full scale (1.0 is full
+    /// scale, so the top code is 1 - 1 LSB and the quantiser saturates there). Indices outside
+    /// 0 .. length_samples() - 1 are silent. Never NaN.
+    virtual void fill(std::int64_t first_index, std::span<double> ratios) const = 0;
+    virtual std::int64_t length_samples() const = 0;
+    virtual Spectrum spectrum() const = 0;
+};
+
+/// What the shapes need to know of the signal.
+struct StimulusContext {
+    double rate_hz = 1.0;  ///< frequencies are given in Hz; Nyquist is rate_hz / 2
+    SampleFormat input;    ///< level_codes are codes of this format
+};
+
+/// Every shape with its parameters; the only place their words stand.
+const std::vector<Recipe>& stimulus_recipes();
+
+/// An Error's place is the name of the parameter to blame.
+Outcome<std::unique_ptr<const Stimulus>> make_stimulus(std::string_view shape, const ParameterValues& values,
+                                                       const StimulusContext& context);
+
+/// The codes that are sent: the stimulus quantised to the input format. This is what both the board
+/// and the oracle get.
+void fill_codes(const Stimulus& stimulus, const SampleFormat& format, Rounding rounding, std::int64_t first_index,
+                std::span<Code> codes);
+
+}  // namespace halflsb
