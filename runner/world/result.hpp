@@ -1,0 +1,92 @@
+// What a run came to: filled case by case by run_plan, read by record and report, and by exit_status.
+// Plain data; nothing here talks to the world.
+#pragma once
+
+#include <cstdint>
+#include <optional>
+#include <string>
+#include <vector>
+
+#include "oracle/judge/plan.hpp"
+#include "oracle/judge/verdict.hpp"
+#include "stimuli/outcome.hpp"
+
+namespace halflsb {
+
+/// The board as its greeting described it.
+struct BoardFacts {
+    std::string rig_name;  ///< [board].name
+    std::string link;      ///< "/dev/ttyUSB0 at 921600 baud"
+    std::string serial;
+    std::string build_id;
+    std::string filter;
+    std::string injection;  ///< "call", "buffer" or "converter"
+    int block_samples = 0, credit_blocks = 0;
+    std::uint32_t tick_hz = 0;
+};
+
+/// Which firmware is this? Design 5.
+struct FirmwareCheck {
+    enum class State { not_verified, agrees } state = State::not_verified;
+    std::string image_file;      ///< of --image, "" without
+    std::string image_build_id;  ///< "" without
+    bool before_run_skipped = false;  ///< because the board already ran the image
+};
+
+/// How a case travelled.
+struct StreamFacts {
+    std::int64_t samples_sent = 0, samples_received = 0;
+    std::int64_t bytes_to_board = 0, bytes_to_host = 0;
+    std::int64_t frames_bad_at_host = 0, resends = 0;
+    std::uint32_t frames_bad_at_board = 0, bytes_lost_at_board = 0, gaps_at_board = 0;
+    double streaming_s = 0.0;
+    /// Bytes of the busier direction x 10 / baud, over streaming_s; none where baud has no meaning.
+    std::optional<double> line_use_ratio;
+    std::uint64_t ticks_total = 0;
+    std::uint32_t ticks_largest = 0;  ///< of one sample
+};
+
+struct CaseResult {
+    std::size_t number = 0;  ///< from 1, place in the plan
+    std::string name;
+    CaseVerdict verdict = CaseVerdict::invalid;
+    Grade grade = Grade::broken;
+    std::optional<Error> invalid;  ///< why the capture is broken
+    std::vector<RuleVerdict> rules;
+    bool latency_told = false;  ///< this case could tell its latency
+    StreamFacts stream;
+    std::string started_utc;
+    double elapsed_s = 0.0;
+    std::string capture_file;  ///< below the run's folder; "" when nothing was captured
+    std::string capture_sha256;
+    std::string rerun;  ///< the command that repeats this case alone
+};
+
+struct Counts {
+    std::size_t pass = 0, fail = 0, invalid = 0, undecided = 0, not_run = 0;
+};
+
+struct RunResult {
+    std::string tool_version;
+    std::string started_utc;
+    std::string title, plan_file, rig_file;
+    std::string plan_sha256, rig_sha256;
+    std::string plan_text, rig_text;  ///< as they were
+    std::optional<std::uint64_t> seed;  ///< of --seed
+    Signal signal;
+    BoardFacts board;
+    FirmwareCheck firmware;
+    std::vector<std::string> cases_planned;  ///< names of the selected cases, in order
+    std::vector<CaseResult> cases;           ///< those that ran
+    std::vector<std::string> warnings;
+    /// What ended the run before its last case: an interruption, the bench, a full disk.
+    std::optional<Error> ended_by;
+    std::string folder;
+    double elapsed_s = 0.0;
+
+    Counts counts() const;
+    /// Some case could tell its latency.
+    bool latency_verified() const;
+};
+
+}  // namespace halflsb
