@@ -1,0 +1,22 @@
+// What a plan asks that its stimuli cannot answer: found on paper, refused before anything is streamed.
+#pragma once
+
+#include <string>
+#include <vector>
+
+#include "oracle/judge/plan.hpp"
+
+namespace halflsb {
+
+struct Refusal {
+    PlanPosition position;
+    std::string problem;
+    std::string remedy;  ///< names a stimulus that would do, where there is one
+};
+
+/// Rules of the case that this stimulus cannot answer: a written latency rule whose reference looks
+/// the same at another lag, a response band without power or bins. Costs up to one pass of the
+/// reference for a written latency rule, nothing to speak of otherwise.
+std::vector<Refusal> refusals(const Plan& plan, const Case& the_case);
+
+}  // namespace halflsb

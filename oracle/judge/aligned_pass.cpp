@@ -1,0 +1,156 @@
+#include "oracle/judge/aligned_pass.hpp"
+
+#include <algorithm>
+
+#include "oracle/judge/response_verdict.hpp"
+#include "oracle/judge/units.hpp"
+
+namespace halflsb {
+namespace {
+
+/// Figures are held against their limits after rounding, so that limit, margin and verdict agree.
+JudgedFigure at_most(std::string name, double value, double limit, std::string unit) {
+    JudgedFigure figure{std::move(name), judged(value), judged(limit), std::nullopt, std::move(unit), false, false, {}};
+    figure.passed = *figure.value <= *figure.limit;
+    figure.margin = judged(*figure.limit - *figure.value);
+    return figure;
+}
+
+}  // namespace
+
+AlignedPass::AlignedPass(const Plan& plan, const Case& the_case, int lag_samples)
+    : plan_(plan), case_(the_case), lag_(lag_samples), to_skip_(lag_samples < 0 ? static_cast<std::size_t>(-lag_samples) : 0) {
+    const double step = plan.signal.output.has_lsb() ? lsb_value(plan.signal.output) : 1.0;
+    bool wants_response = false;
+    for (const Rule& rule : the_case.rules) {
+        if (const auto* error = std::get_if<ErrorRule>(&rule.kind)) {
+            std::optional<double> limit;
+            if (error->largest) limit = value_of(*error->largest, plan.signal);
+            error_rules_.push_back({&rule, ErrorMeasure(limit), FirstBadWatch(step)});
+        }
+        wants_response = wants_response || std::holds_alternative<ResponseRule>(rule.kind);
+    }
+    if (wants_response) response_measure_ = make_response_measure(*the_case.stimulus);
+    if (lag_samples > 0) {
+        const auto silence = static_cast<std::size_t>(lag_samples);
+        codes_.assign(silence, 0);
+        stimulus_.assign(silence, 0.0);
+        declared_.assign(silence, 0.0);
+        if (wants_response) design_.assign(silence, 0.0);
+    }
+}
+
+void AlignedPass::add(const ReferenceBlock& reference, std::span<const Code> response) {
+    if (lag_ == 0) {
+        measure(reference.codes, reference.stimulus, reference.declared, reference.design, response);
+        return;
+    }
+    const auto skip = std::min(to_skip_, reference.codes.size());
+    to_skip_ -= skip;
+    const auto append = [skip](auto& waiting, auto fresh) {
+        if (!fresh.empty()) waiting.insert(waiting.end(), fresh.begin() + static_cast<std::ptrdiff_t>(skip), fresh.end());
+    };
+    append(codes_, reference.codes);
+    append(stimulus_, reference.stimulus);
+    append(declared_, reference.declared);
+    append(design_, reference.design);
+    response_.insert(response_.end(), response.begin(), response.end());
+
+    const std::size_t ready = std::min(codes_.size(), response_.size());
+    const auto head = [ready](auto& waiting) { return std::span(waiting).first(std::min(ready, waiting.size())); };
+    measure(head(codes_), head(stimulus_), head(declared_), head(design_), head(response_));
+    const auto drop = [ready](auto& waiting) {
+        waiting.erase(waiting.begin(), waiting.begin() + static_cast<std::ptrdiff_t>(std::min(ready, waiting.size())));
+    };
+    drop(codes_);
+    drop(stimulus_);
+    drop(declared_);
+    drop(design_);
+    drop(response_);
+}
+
+void AlignedPass::measure(std::span<const Code> codes, std::span<const double> stimulus, std::span<const double> declared,
+                          std::span<const double> design, std::span<const Code> response) {
+    response_values_.resize(response.size());
+    values_of(plan_.signal.output, response, response_values_);
+    for (ErrorRuleState& state : error_rules_) {
+        state.measure.add(declared, response_values_);
+        state.watch.add(next_index_, codes, declared, response, state.measure.value().first_beyond);
+    }
+    if (response_measure_) {
+        design_error_.resize(response.size());
+        std::transform(response_values_.begin(), response_values_.end(), design.begin(), design_error_.begin(),
+                       [](double measured, double ideal) { return measured - ideal; });
+        response_measure_->add(stimulus, design_error_);
+    }
+    next_index_ += static_cast<std::int64_t>(response.size());
+}
+
+RuleVerdict AlignedPass::error_verdict(const ErrorRuleState& state) const {
+    const auto& rule = std::get<ErrorRule>(state.rule->kind);
+    const ErrorFigures figures = state.measure.value();
+    RuleVerdict verdict{*state.rule, Verdict::undecided, "declared", {}, {}, state.watch.found()};
+    const auto told = [&](const std::optional<Limit>& limit, std::string name, double value) {
+        const Limit::In in = limit ? limit->in : natural_unit(plan_.signal);
+        const double worth = worth_of(in, plan_.signal);
+        if (limit) {
+            verdict.figures.push_back(at_most(std::move(name), value / worth, limit->number, unit_name(in, plan_.signal)));
+        } else {
+            verdict.figures.push_back({std::move(name), judged(value / worth), std::nullopt, std::nullopt, unit_name(in, plan_.signal), false, true, {}});
+        }
+    };
+    told(rule.largest, "max", figures.largest);
+    told(rule.rms, "rms", figures.rms);
+    told(rule.bias, "bias", rule.bias ? std::abs(figures.bias) : figures.bias);
+    if (rule.min_snr_db || figures.snr_db) {
+        JudgedFigure snr{"snr", std::nullopt, std::nullopt, std::nullopt, "dB", true, true, {}};
+        if (figures.snr_db) snr.value = judged(*figures.snr_db);
+        if (rule.min_snr_db) {
+            snr.limit = judged(*rule.min_snr_db);
+            if (figures.identical) {
+                snr.note = "identical";
+            } else if (snr.value) {
+                snr.margin = judged(*snr.value - *snr.limit);
+                snr.passed = *snr.value >= *snr.limit;
+            } else {
+                snr.passed = false;
+                snr.note = "the reference is silent";
+            }
+        }
+        verdict.figures.push_back(std::move(snr));
+    }
+    if (figures.samples == 0) {
+        verdict.reason = "no sample was compared";
+        return verdict;
+    }
+    const bool passed = std::all_of(verdict.figures.begin(), verdict.figures.end(), [](const JudgedFigure& f) { return f.passed; });
+    verdict.verdict = passed ? Verdict::pass : Verdict::fail;
+    if (figures.identical) verdict.reason = "every sample equals the reference";
+    if (figures.beyond > 0) {
+        verdict.reason = std::to_string(figures.beyond) + " of " + std::to_string(figures.samples) + " samples beyond max";
+    }
+    // The measure compares unrounded, the verdict rounded figures: a pass shows no bad sample.
+    if (passed) verdict.first_bad.reset();
+    return verdict;
+}
+
+std::vector<RuleVerdict> AlignedPass::verdicts() const {
+    std::vector<RuleVerdict> verdicts;
+    for (const Rule& rule : case_.rules) {
+        if (const auto* response = std::get_if<ResponseRule>(&rule.kind)) {
+            verdicts.push_back(judge_response(*response, rule, plan_, *case_.stimulus, response_measure_->value()));
+        } else if (std::holds_alternative<ErrorRule>(rule.kind)) {
+            for (const ErrorRuleState& state : error_rules_) {
+                if (state.rule == &rule) verdicts.push_back(error_verdict(state));
+            }
+        }
+    }
+    return verdicts;
+}
+
+bool AlignedPass::error_rules_pass() const {
+    return std::all_of(error_rules_.begin(), error_rules_.end(),
+                       [this](const ErrorRuleState& state) { return error_verdict(state).verdict == Verdict::pass; });
+}
+
+}  // namespace halflsb

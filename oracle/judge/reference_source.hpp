@@ -1,0 +1,37 @@
+// Stimulus codes of a case and what the two references say of them, block by block from index 0.
+#pragma once
+
+#include <cstdint>
+#include <memory>
+#include <span>
+#include <vector>
+
+#include "oracle/judge/plan.hpp"
+
+namespace halflsb {
+
+/// All spans have the same length and belong to the same indices.
+struct ReferenceBlock {
+    std::int64_t first_index = 0;
+    std::span<const Code> codes;
+    std::span<const double> stimulus;  ///< values of the codes, times output_per_input
+    std::span<const double> declared;
+    std::span<const double> design;  ///< empty when it was not asked for
+};
+
+class ReferenceSource {
+public:
+    ReferenceSource(const Plan& plan, const Case& the_case, bool with_design);
+    /// The next `count` samples; the block is good until the next call.
+    ReferenceBlock next(std::size_t count);
+
+private:
+    const Signal& signal_;
+    std::shared_ptr<const Stimulus> stimulus_;
+    std::unique_ptr<Filter> declared_filter_, design_filter_;
+    std::int64_t next_index_ = 0;
+    std::vector<Code> codes_;
+    std::vector<double> values_, declared_, design_;
+};
+
+}  // namespace halflsb

@@ -1,0 +1,105 @@
+#include "oracle/judge/response_verdict.hpp"
+
+#include <algorithm>
+#include <charconv>
+#include <cmath>
+
+#include "oracle/filters/filter.hpp"
+
+namespace halflsb {
+namespace {
+
+std::string hz_text(double hz) {
+    char text[32];
+    const auto end = std::to_chars(text, text + sizeof text, hz, std::chars_format::general, 6).ptr;
+    return std::string(text, end) + " Hz";
+}
+
+bool within(double hz, const ResponseBand& band) {
+    // A frequency that was computed as k / segment x rate may miss an edge by a rounding.
+    const double slack = 1e-9 * std::max(1.0, std::fabs(hz));
+    return hz >= band.from_hz - slack && hz <= band.to_hz + slack;
+}
+
+bool has_power(const Spectrum& spectrum, double cycles_per_sample) {
+    return spectrum.to_cycles_per_sample > 0.0 && cycles_per_sample >= spectrum.from_cycles_per_sample &&
+           cycles_per_sample <= spectrum.to_cycles_per_sample;
+}
+
+struct Extreme {
+    double gain_db;
+    double hz;
+};
+
+JudgedFigure held(const Extreme& extreme, double limit_db, bool at_least, const ResponseBand& band) {
+    JudgedFigure figure;
+    figure.name = std::string(at_least ? "lowest" : "highest") + " gain from " + hz_text(band.from_hz) + " to " + hz_text(band.to_hz);
+    figure.limit = judged(limit_db);
+    figure.unit = "dB";
+    figure.at_least = at_least;
+    const double gain_db = judged(extreme.gain_db);
+    figure.passed = at_least ? gain_db >= *figure.limit : gain_db <= *figure.limit;
+    figure.note = "at " + hz_text(extreme.hz);
+    if (std::isfinite(gain_db)) {
+        figure.value = gain_db;
+        figure.margin = judged(at_least ? gain_db - *figure.limit : *figure.limit - gain_db);
+    } else {
+        figure.note += ", no output there";
+    }
+    return figure;
+}
+
+}  // namespace
+
+std::unique_ptr<ResponseMeasure> make_response_measure(const Stimulus& stimulus) {
+    const Spectrum spectrum = stimulus.spectrum();
+    if (!spectrum.tones.empty()) return make_tone_response(spectrum.tones, stimulus.length_samples());
+    return make_welch_response(response_segment_for(stimulus.length_samples()));
+}
+
+std::vector<double> answerable_hz(const ResponseBand& band, const Stimulus& stimulus, double rate_hz) {
+    const Spectrum spectrum = stimulus.spectrum();
+    std::vector<double> found;
+    for (const double tone : spectrum.tones) {
+        if (within(tone * rate_hz, band)) found.push_back(tone * rate_hz);
+    }
+    if (!spectrum.tones.empty()) return found;
+    const std::size_t segment = response_segment_for(stimulus.length_samples());
+    for (std::size_t bin = 0; bin <= segment / 2; ++bin) {
+        const double cycles_per_sample = static_cast<double>(bin) / static_cast<double>(segment);
+        if (within(cycles_per_sample * rate_hz, band) && has_power(spectrum, cycles_per_sample)) found.push_back(cycles_per_sample * rate_hz);
+    }
+    return found;
+}
+
+RuleVerdict judge_response(const ResponseRule& rule, const Rule& asked, const Plan& plan, const Stimulus& stimulus,
+                           const std::vector<ResponsePoint>& points) {
+    RuleVerdict verdict{asked, Verdict::pass, "design", {}, {}, std::nullopt};
+    const Spectrum spectrum = stimulus.spectrum();
+    for (const ResponseBand& band : rule.bands) {
+        std::optional<Extreme> lowest, highest;
+        for (const ResponsePoint& point : points) {
+            const double hz = point.cycles_per_sample * plan.signal.rate_hz;
+            if (!within(hz, band) || (spectrum.tones.empty() && !has_power(spectrum, point.cycles_per_sample))) continue;
+            const std::complex<double> design = response_at(plan.filter, point.cycles_per_sample);
+            double measured_db = gain_db(design + point.difference);
+            if (rule.relative_to_design) measured_db -= gain_db(design);
+            // NaN must not hide behind a comparison that is false.
+            if (!lowest || !(measured_db >= lowest->gain_db)) lowest = Extreme{measured_db, hz};
+            if (!highest || !(measured_db <= highest->gain_db)) highest = Extreme{measured_db, hz};
+        }
+        if (!lowest) {
+            if (verdict.verdict == Verdict::pass) verdict.verdict = Verdict::undecided;
+            verdict.reason = "the stimulus has no power from " + hz_text(band.from_hz) + " to " + hz_text(band.to_hz);
+            continue;
+        }
+        if (band.min_db) verdict.figures.push_back(held(*lowest, *band.min_db, true, band));
+        if (band.max_db) verdict.figures.push_back(held(*highest, *band.max_db, false, band));
+    }
+    if (std::any_of(verdict.figures.begin(), verdict.figures.end(), [](const JudgedFigure& f) { return !f.passed; })) {
+        verdict.verdict = Verdict::fail;
+    }
+    return verdict;
+}
+
+}  // namespace halflsb

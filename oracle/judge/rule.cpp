@@ -1,0 +1,166 @@
+#include "oracle/judge/rule.hpp"
+
+#include <cmath>
+
+#include "oracle/measure/lag.hpp"
+
+namespace halflsb {
+namespace {
+
+Error refuse(std::string parameter, std::string problem, std::string remedy) {
+    return {ErrorKind::input, std::move(parameter), std::move(problem), std::move(remedy)};
+}
+
+std::string shown(double number) {
+    std::string text = std::to_string(number);
+    while (text.find('.') != std::string::npos && (text.back() == '0' || text.back() == '.')) {
+        const bool point = text.back() == '.';
+        text.pop_back();
+        if (point) break;
+    }
+    return text;
+}
+
+struct LimitWords {
+    std::string_view lsb, ratio, unit;
+};
+constexpr LimitWords largest_words{"max_lsb", "max_ratio", "max_unit"};
+constexpr LimitWords rms_words{"rms_lsb", "rms_ratio", "rms_unit"};
+constexpr LimitWords bias_words{"bias_lsb", "bias_ratio", "bias_unit"};
+
+/// One limit in one of its three units; the widest sensible one is full scale.
+Outcome<std::optional<Limit>> read_limit(const ParameterValues& values, const Recipe& recipe, const LimitWords& words,
+                                         const RuleContext& context) {
+    std::optional<Limit> limit;
+    std::string_view seen;
+    for (const auto& [name, in] : {std::pair{words.lsb, Limit::In::lsb}, std::pair{words.ratio, Limit::In::full_scale_ratio},
+                                   std::pair{words.unit, Limit::In::unit}}) {
+        const auto number = values.number(recipe, name);
+        if (!number) continue;
+        if (limit) {
+            return refuse(std::string(name), "the same limit is given twice, as " + std::string(seen) + " and as " + std::string(name),
+                          "keep one of the two");
+        }
+        if (in == Limit::In::lsb && !context.output_has_lsb) {
+            return refuse(std::string(name), "an f32 output has no LSB", "use " + std::string(words.ratio) + " or " + std::string(words.unit));
+        }
+        if (in == Limit::In::unit && !context.full_scale_unit) {
+            return refuse(std::string(name), "nothing says what full scale is worth in the unit",
+                          "set full_scale_unit in [signal], or use " + std::string(words.ratio));
+        }
+        const double widest = in == Limit::In::lsb                ? context.output_full_scale_lsb
+                              : in == Limit::In::full_scale_ratio ? 1.0
+                                                                  : std::fabs(*context.full_scale_unit);
+        if (!(*number <= widest)) {
+            return refuse(std::string(name), shown(*number) + " is wider than full scale (" + shown(widest) + ")",
+                          "a limit that wide judges nothing; give the error that the design allows");
+        }
+        limit = Limit{*number, in};
+        seen = name;
+    }
+    return limit;
+}
+
+Outcome<Rule> make_error_rule(const ParameterValues& values, const Recipe& recipe, const RuleContext& context) {
+    ErrorRule rule;
+    for (const auto& [words, target] : {std::pair{largest_words, &rule.largest}, std::pair{rms_words, &rule.rms}, std::pair{bias_words, &rule.bias}}) {
+        auto limit = read_limit(values, recipe, words, context);
+        if (!limit) return limit.error();
+        *target = *limit;
+    }
+    rule.min_snr_db = values.number(recipe, "min_snr_db");
+    if (!rule.largest && !rule.rms && !rule.bias && !rule.min_snr_db) {
+        return refuse("kind", "an error rule without a limit judges nothing",
+                      "give at least one of max_lsb, rms_lsb, bias_lsb (or _ratio, _unit) and min_snr_db");
+    }
+    return Rule{rule, {}};
+}
+
+Outcome<Rule> make_latency_rule(const ParameterValues& values, const Recipe& recipe) {
+    LatencyRule rule;
+    rule.expected_samples = static_cast<int>(*values.integer(recipe, "latency_samples"));
+    return Rule{rule, {}};
+}
+
+Outcome<Rule> make_response_rule(const ParameterValues& values, const Recipe& recipe, const RuleContext& context) {
+    ResponseRule rule;
+    rule.relative_to_design = values.text(recipe, "relative_to") == "design";
+    const double nyquist_hz = context.rate_hz / 2.0;
+    for (const auto& row : values.rows("bands")) {
+        if (row.size() != 4) return refuse("bands", "a band has four numbers", "give from_hz, to_hz and min_db or max_db");
+        ResponseBand band{row[0], row[1], std::nullopt, std::nullopt};
+        const std::string name = shown(band.from_hz) + " to " + shown(band.to_hz) + " Hz";
+        if (!(band.from_hz >= 0.0) || !(band.to_hz >= band.from_hz)) {
+            return refuse("bands", "the band " + name + " runs backwards", "from_hz must be at least 0 and at most to_hz");
+        }
+        if (!(band.to_hz <= nyquist_hz)) {
+            return refuse("bands", "the band " + name + " ends above Nyquist (" + shown(nyquist_hz) + " Hz)", "end it at " + shown(nyquist_hz) + " Hz or below");
+        }
+        if (std::isfinite(row[2])) band.min_db = row[2];
+        if (std::isfinite(row[3])) band.max_db = row[3];
+        if (!band.min_db && !band.max_db) return refuse("bands", "the band " + name + " has no limit", "give min_db, max_db or both");
+        if (band.min_db && band.max_db && !(*band.min_db <= *band.max_db)) {
+            return refuse("bands", "the limits of the band " + name + " cross: min_db " + shown(*band.min_db) + " is above max_db " + shown(*band.max_db),
+                          "exchange them");
+        }
+        rule.bands.push_back(band);
+    }
+    if (rule.bands.empty()) return refuse("bands", "a response rule without bands judges nothing", "give at least one band");
+    return Rule{rule, {}};
+}
+
+}  // namespace
+
+std::string to_text(const PlanPosition& position) {
+    return position.file + ":" + std::to_string(position.line) + ":" + std::to_string(position.column);
+}
+
+const std::vector<Recipe>& rule_recipes() {
+    const auto limit = [](std::string_view name, std::string_view unit, std::string_view help) {
+        return Parameter{name, ParameterType::real, unit, 0.0, no_limit, false, std::nullopt, {}, help};
+    };
+    static const std::vector<Recipe> recipes{
+        {"error",
+         "Response minus declared reference, over all samples; give at least one limit.",
+         {
+             limit("max_lsb", "LSB", "Largest error allowed, in steps of the output format."),
+             limit("max_ratio", "of full scale", "Largest error allowed, as a fraction of the output's full scale."),
+             limit("max_unit", "unit", "Largest error allowed, in the unit of [signal]."),
+             limit("rms_lsb", "LSB", "Root mean square of the error allowed."),
+             limit("rms_ratio", "of full scale", "Root mean square of the error allowed."),
+             limit("rms_unit", "unit", "Root mean square of the error allowed."),
+             limit("bias_lsb", "LSB", "Mean of the error allowed, either sign."),
+             limit("bias_ratio", "of full scale", "Mean of the error allowed, either sign."),
+             limit("bias_unit", "unit", "Mean of the error allowed, either sign."),
+             {"min_snr_db", ParameterType::real, "dB", -no_limit, no_limit, false, std::nullopt, {},
+              "Power of the reference over power of the error, at least; an exact match passes."},
+         }},
+        {"latency",
+         "Whole-sample delay of the response behind the reference; the filter's own delay is not latency.",
+         {
+             {"latency_samples", ParameterType::integer, "samples", -lag_window_samples, lag_window_samples, true, std::nullopt, {},
+              "The delay that is right; every case without this rule is held to 0."},
+         }},
+        {"response",
+         "Gain against limits in bands, from a noise, chirp, sine or multitone stimulus, judged against the design.",
+         {
+             {"bands", ParameterType::bands, "", -no_limit, no_limit, true, std::nullopt, {},
+              "Array of {from_hz, to_hz, min_db, max_db}; one of min_db and max_db may be left out."},
+             {"relative_to", ParameterType::choice, "", -no_limit, no_limit, false, std::nullopt, {"absolute", "design"},
+              "Whether the limits hold for the gain itself or for its deviation from the design."},
+         }},
+    };
+    return recipes;
+}
+
+std::string_view kind_name(const Rule& rule) { return rule_recipes()[rule.kind.index()].name; }
+
+Outcome<Rule> make_rule(std::string_view kind, const ParameterValues& values, const RuleContext& context) {
+    const Recipe* recipe = find_recipe(rule_recipes(), kind);
+    if (recipe == nullptr) return refuse("kind", "there is no rule \"" + std::string(kind) + "\"", "use error, latency or response");
+    if (kind == "error") return make_error_rule(values, *recipe, context);
+    if (kind == "latency") return make_latency_rule(values, *recipe);
+    return make_response_rule(values, *recipe, context);
+}
+
+}  // namespace halflsb
