@@ -1,0 +1,43 @@
+// Writes what the board returned to the capture file, before anything looks at it, and reads it back
+// for a second pass. The file is NPY 1.0, one-dimensional, in the codes of the output format.
+#pragma once
+
+#include <cstddef>
+#include <cstdint>
+#include <memory>
+#include <span>
+#include <string>
+#include <vector>
+
+#include "runner/world/files.hpp"
+#include "stimuli/outcome.hpp"
+#include "stimuli/sample_format.hpp"
+
+namespace halflsb {
+
+class Recorder {
+public:
+    /// Begins the file beside its final name (Files::open_output). Errors of all members are of kind
+    /// output, place = the path; after one the recorder is only good for discarding.
+    static Outcome<Recorder> open(Files& files, const std::string& path, const SampleFormat& format);
+
+    /// The next response samples, in order. They are in the file when this returns.
+    Outcome<void> append(std::span<const Code> codes);
+    std::int64_t samples() const { return samples_; }
+    /// Samples that were appended, from first_index on; they must all be there.
+    Outcome<void> read(std::int64_t first_index, std::span<Code> codes);
+    /// Writes the length into the header and gives the file its name.
+    Outcome<void> finish();
+    /// Leaves nothing behind.
+    void discard();
+
+private:
+    Recorder(std::unique_ptr<OutputFile> file, const SampleFormat& format) : file_(std::move(file)), format_(format) {}
+
+    std::unique_ptr<OutputFile> file_;
+    SampleFormat format_;
+    std::int64_t samples_ = 0;
+    std::vector<std::byte> bytes_;
+};
+
+}  // namespace halflsb
