@@ -1,4 +1,6 @@
 // The table of all shapes, and how a name becomes a stimulus.
+#include <cmath>
+
 #include "stimuli/shape.hpp"
 
 namespace halflsb {
@@ -6,7 +8,8 @@ namespace halflsb {
 namespace {
 
 const std::vector<Shape>& shapes() {
-    static const std::vector<Shape> all = {step_shape(), impulse_shape(), noise_shape()};
+    static const std::vector<Shape> all = {step_shape(),  impulse_shape(), chirp_shape(),
+                                           noise_shape(), sine_shape(),    multitone_shape()};
     return all;
 }
 
@@ -22,12 +25,21 @@ const std::vector<Recipe>& stimulus_recipes() {
 }
 
 StimulusOutcome make_stimulus(std::string_view shape, const ParameterValues& values, const StimulusContext& context) {
-    for (const Shape& candidate : shapes()) {
-        if (candidate.recipe.name == shape) return candidate.make(candidate.recipe, values, context);
+    if (!(context.rate_hz > 0.0 && std::isfinite(context.rate_hz))) {
+        return refused("rate_hz", number_text(context.rate_hz) + " Hz is no sample rate",
+                       "Give a finite rate above 0 Hz.");
     }
     std::string known;
-    for (const Shape& candidate : shapes()) known += (known.empty() ? "" : ", ") + std::string(candidate.recipe.name);
-    return refused("shape", "no stimulus is called \"" + std::string(shape) + "\"", "Known shapes: " + known + ".");
+    for (const Shape& candidate : shapes()) {
+        const Recipe& recipe = candidate.recipe;
+        if (recipe.name != shape) {
+            known += (known.empty() ? "" : ", ") + std::string(recipe.name);
+            continue;
+        }
+        if (auto error = misfit_of(recipe, values)) return *error;
+        return candidate.make(recipe, values, context);
+    }
+    return refused("shape", "no stimulus is called \"" + std::string(shape) + "\"", "Shapes: " + known + ".");
 }
 
 }  // namespace halflsb

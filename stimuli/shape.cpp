@@ -1,8 +1,6 @@
 #include "stimuli/shape.hpp"
 
 #include <algorithm>
-#include <array>
-#include <charconv>
 
 namespace halflsb {
 
@@ -76,6 +74,20 @@ Outcome<Placement> placement_of(const Recipe& recipe, const ParameterValues& val
     return placement;
 }
 
+Parameter seed_parameter(std::string_view help) {
+    // Up to 2^53 - 1, so that a seed survives any tool that keeps numbers as doubles.
+    return {.name = "seed",
+            .type = ParameterType::integer,
+            .minimum = 0.0,
+            .maximum = 9007199254740991.0,
+            .default_value = 1.0,
+            .help = help};
+}
+
+std::uint64_t seed_of(const Recipe& recipe, const ParameterValues& values) {
+    return static_cast<std::uint64_t>(values.integer(recipe, "seed").value_or(0));
+}
+
 void PlacedStimulus::fill(std::int64_t first_index, std::span<double> ratios) const {
     // Counted from the front of the span, so that no sum of index and size can overflow.
     const auto size = static_cast<std::int64_t>(ratios.size());
@@ -100,12 +112,6 @@ void PlacedStimulus::fill(std::int64_t first_index, std::span<double> ratios) co
 
 Error refused(std::string_view parameter, std::string problem, std::string remedy) {
     return Error{ErrorKind::input, std::string(parameter), std::move(problem), std::move(remedy)};
-}
-
-std::string number_text(double value) {
-    std::array<char, 32> text{};
-    const auto end = std::to_chars(text.data(), text.data() + text.size(), value).ptr;
-    return std::string(text.data(), end);
 }
 
 std::optional<Error> frequency_error(std::string_view parameter, double frequency_hz, double rate_hz) {

@@ -9,10 +9,11 @@
 #include <vector>
 
 #include "stimuli/stimulus.hpp"
+#include "stimuli/values_check.hpp"
 
 namespace halflsb {
 
-/// Longest stimulus. Phases are good for it (see turns.hpp), and at 1 MHz it lasts nearly three hours.
+/// Longest stimulus. Phases are good for it (see wide.hpp), and at 1 MHz it lasts nearly three hours.
 inline constexpr std::int64_t longest_stimulus_samples = 10'000'000'000;
 
 /// The start, length and level that every shape has.
@@ -33,6 +34,9 @@ std::vector<Parameter> placement_parameters(LevelSign sign, double default_level
 /// Reads the four parameters; refuses what the table cannot express.
 Outcome<Placement> placement_of(const Recipe& recipe, const ParameterValues& values, const StimulusContext& context,
                                 LevelSign sign);
+
+Parameter seed_parameter(std::string_view help);
+std::uint64_t seed_of(const Recipe& recipe, const ParameterValues& values);
 
 /// A stimulus that is silent outside at_samples .. length_samples - 1.
 class PlacedStimulus : public Stimulus {
@@ -67,8 +71,6 @@ Shape multitone_shape();
 
 /// An Error of kind input.
 Error refused(std::string_view parameter, std::string problem, std::string remedy);
-/// The shortest decimal text that reads back as the same number, whatever the locale.
-std::string number_text(double value);
 
 /// Refuses a frequency that is not in 0 < f <= rate / 2.
 std::optional<Error> frequency_error(std::string_view parameter, double frequency_hz, double rate_hz);
