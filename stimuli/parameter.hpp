@@ -29,26 +29,27 @@ inline constexpr double no_limit = std::numeric_limits<double>::infinity();
 
 /// One word of the plan. Ranges are inclusive and hold for each element of an array.
 struct Parameter {
-    std::string_view name;  ///< as written in the plan, its unit at the end
+    std::string_view name = {};  ///< as written in the plan, its unit at the end
     ParameterType type = ParameterType::real;
-    std::string_view unit;  ///< for messages and docs: "Hz", "samples", "dB", "LSB", "of full scale", ""
+    std::string_view unit = {};  ///< for messages and docs: "Hz", "samples", "dB", "LSB", "of full scale", ""
     double minimum = -no_limit;
     double maximum = no_limit;
     bool required = false;
-    std::optional<double> default_value;  ///< of a number that may be left out
-    std::vector<std::string_view> choices;  ///< of a choice, the first is the default unless required
-    std::string_view help;                  ///< one sentence
+    std::optional<double> default_value = {};    ///< of a number that may be left out
+    std::vector<std::string_view> choices = {};  ///< of a choice, the first is the default unless required
+    std::string_view help = {};                  ///< one sentence
 };
 
 /// A stimulus shape, filter kind or rule kind with its parameters, in the order docs show them.
 struct Recipe {
-    std::string_view name;
-    std::string_view help;
-    std::vector<Parameter> parameters;
+    std::string_view name = {};
+    std::string_view help = {};
+    std::vector<Parameter> parameters = {};
 };
 
 /// What a plan gave for one parameter.
-using ParameterValue = std::variant<std::int64_t, double, std::string, std::vector<double>, std::vector<std::vector<double>>>;
+using ParameterValue =
+    std::variant<std::int64_t, double, std::string, std::vector<double>, std::vector<std::vector<double>>>;
 
 /// What a plan gave for one recipe: types and ranges of the table already hold, defaults are not
 /// yet filled in.

@@ -21,7 +21,7 @@ struct Spectrum {
     double from_cycles_per_sample = 0.0;
     double to_cycles_per_sample = 0.0;
     /// Single lines, cycles per sample, ascending.
-    std::vector<double> tones;
+    std::vector<double> tones = {};
 };
 
 class Stimulus {

@@ -1,0 +1,59 @@
+// Step and impulse: a level from at_samples on, or in that one sample.
+#include <algorithm>
+
+#include "stimuli/shape.hpp"
+
+namespace halflsb {
+
+namespace {
+
+constexpr std::string_view edge_level_help =
+    "Level of the signal, of either sign; 1 saturates at the top code, -1 is the lowest code.";
+
+class Step final : public PlacedStimulus {
+public:
+    using PlacedStimulus::PlacedStimulus;
+    Spectrum spectrum() const override { return {}; }
+
+private:
+    void fill_own(std::int64_t, std::span<double> ratios) const override {
+        std::fill(ratios.begin(), ratios.end(), placement().level_ratio);
+    }
+};
+
+class Impulse final : public PlacedStimulus {
+public:
+    using PlacedStimulus::PlacedStimulus;
+    Spectrum spectrum() const override { return {}; }
+
+private:
+    void fill_own(std::int64_t first_own_index, std::span<double> ratios) const override {
+        std::fill(ratios.begin(), ratios.end(), 0.0);
+        if (first_own_index == 0) ratios[0] = placement().level_ratio;
+    }
+};
+
+template <class Edge>
+StimulusOutcome make_edge(const Recipe& recipe, const ParameterValues& values, const StimulusContext& context) {
+    auto placement = placement_of(recipe, values, context, LevelSign::any);
+    if (!placement) return placement.error();
+    return std::unique_ptr<const Stimulus>(std::make_unique<Edge>(*placement));
+}
+
+}  // namespace
+
+Shape step_shape() {
+    return {{.name = "step",
+             .help = "Silence, then a constant level from at_samples to the end.",
+             .parameters = placement_parameters(LevelSign::any, 0.5, edge_level_help)},
+            make_edge<Step>};
+}
+
+Shape impulse_shape() {
+    return {{.name = "impulse",
+             .help = "One sample at at_samples, silence before and after it.",
+             .parameters = placement_parameters(LevelSign::any, 0.5, edge_level_help)},
+            make_edge<Impulse>};
+}
+
+}  // namespace halflsb

@@ -1,0 +1,110 @@
+#include "stimuli/sample_format.hpp"
+
+#include <algorithm>
+#include <bit>
+#include <cassert>
+#include <limits>
+
+namespace halflsb {
+
+namespace {
+
+constexpr double largest_float = static_cast<double>(std::numeric_limits<float>::max());
+
+/// 2^exponent, exact; exponent 0 .. 62.
+double power_of_two(int exponent) { return static_cast<double>(std::int64_t{1} << exponent); }
+
+double codes_in_full_scale(const SampleFormat& format) { return power_of_two(format.word_bits - 1); }
+
+}  // namespace
+
+const std::vector<SampleFormat>& sample_formats() {
+    static const std::vector<SampleFormat> formats = {
+        {"q15", FormatFamily::q, 16, 15, 1}, {"q31", FormatFamily::q, 32, 31, 2}, {"i16", FormatFamily::i, 16, 0, 3},
+        {"i32", FormatFamily::i, 32, 0, 4},  {"f32", FormatFamily::f, 32, 0, 5},
+    };
+    return formats;
+}
+
+std::optional<SampleFormat> sample_format(std::string_view name) {
+    for (const SampleFormat& format : sample_formats()) {
+        if (format.name == name) return format;
+    }
+    return std::nullopt;
+}
+
+std::optional<SampleFormat> sample_format_of_wire_number(std::uint8_t number) {
+    for (const SampleFormat& format : sample_formats()) {
+        if (format.wire_number == number) return format;
+    }
+    return std::nullopt;
+}
+
+double lsb_value(const SampleFormat& format) {
+    assert(format.has_lsb());
+    return 1.0 / power_of_two(format.fraction_bits);
+}
+
+double full_scale_value(const SampleFormat& format) {
+    if (!format.has_lsb()) return 1.0;
+    return codes_in_full_scale(format) * lsb_value(format);
+}
+
+double lowest_value(const SampleFormat& format) {
+    return format.has_lsb() ? -full_scale_value(format) : -largest_float;
+}
+
+double highest_value(const SampleFormat& format) {
+    return format.has_lsb() ? full_scale_value(format) - lsb_value(format) : largest_float;
+}
+
+double value_of(const SampleFormat& format, Code code) {
+    if (!format.has_lsb()) return static_cast<double>(std::bit_cast<float>(code));
+    return static_cast<double>(code) * lsb_value(format);
+}
+
+Code code_of(const SampleFormat& format, double value, Rounding rounding) {
+    if (!format.has_lsb()) {
+        // Clamped first: converting a double beyond the largest float is undefined.
+        return std::bit_cast<Code>(static_cast<float>(std::clamp(value, -largest_float, largest_float)));
+    }
+    const double end = codes_in_full_scale(format);
+    const double codes = value * power_of_two(format.fraction_bits);
+    // Also clamped before rounding, so that round_to_whole sees nothing beyond 2^52.
+    const double whole = round_to_whole(std::clamp(codes, -end - 1.0, end), rounding);
+    return static_cast<Code>(std::clamp(whole, -end, end - 1.0));
+}
+
+void values_of(const SampleFormat& format, std::span<const Code> codes, std::span<double> values) {
+    assert(codes.size() == values.size());
+    if (format.has_lsb()) {
+        const double step = lsb_value(format);
+        for (std::size_t i = 0; i < codes.size(); ++i) values[i] = static_cast<double>(codes[i]) * step;
+    } else {
+        for (std::size_t i = 0; i < codes.size(); ++i) values[i] = static_cast<double>(std::bit_cast<float>(codes[i]));
+    }
+}
+
+void to_wire_bytes(const SampleFormat& format, std::span<const Code> codes, std::span<std::byte> bytes) {
+    const std::size_t word_bytes = format.word_bytes();
+    assert(bytes.size() == codes.size() * word_bytes);
+    std::size_t at = 0;
+    for (const Code code : codes) {
+        const auto word = static_cast<std::uint32_t>(code);
+        for (std::size_t k = 0; k < word_bytes; ++k) bytes[at++] = static_cast<std::byte>(word >> (8 * k) & 0xffU);
+    }
+}
+
+void from_wire_bytes(const SampleFormat& format, std::span<const std::byte> bytes, std::span<Code> codes) {
+    const std::size_t word_bytes = format.word_bytes();
+    assert(bytes.size() == codes.size() * word_bytes);
+    const int unused_bits = 32 - format.word_bits;
+    std::size_t at = 0;
+    for (Code& code : codes) {
+        std::uint32_t word = 0;
+        for (std::size_t k = 0; k < word_bytes; ++k) word |= std::to_integer<std::uint32_t>(bytes[at++]) << (8 * k);
+        code = static_cast<Code>(word << unused_bits) >> unused_bits;  // the shift back extends the sign
+    }
+}
+
+}  // namespace halflsb

@@ -1,0 +1,136 @@
+#include "stimuli/values_check.hpp"
+
+#include <algorithm>
+#include <array>
+#include <charconv>
+#include <cmath>
+
+namespace halflsb {
+
+namespace {
+
+Error misfit(std::string_view name, std::string problem, std::string remedy) {
+    return {ErrorKind::input, std::string(name), std::move(problem), std::move(remedy)};
+}
+
+std::string listed(const std::vector<std::string_view>& words) {
+    std::string text;
+    for (const auto word : words) text += (text.empty() ? "" : ", ") + std::string(word);
+    return text;
+}
+
+std::string_view type_text(ParameterType type) {
+    switch (type) {
+        case ParameterType::integer:
+            return "a whole number";
+        case ParameterType::real:
+            return "a number";
+        case ParameterType::text:
+        case ParameterType::choice:
+            return "a string";
+        case ParameterType::reals:
+        case ParameterType::file:
+            return "an array of numbers";
+        case ParameterType::sections:
+        case ParameterType::bands:
+            return "an array of arrays of numbers";
+    }
+    return "something else";
+}
+
+bool type_fits(ParameterType type, const ParameterValue& value) {
+    switch (type) {
+        case ParameterType::integer:
+            return std::holds_alternative<std::int64_t>(value);
+        case ParameterType::real:
+            return std::holds_alternative<std::int64_t>(value) || std::holds_alternative<double>(value);
+        case ParameterType::text:
+        case ParameterType::choice:
+            return std::holds_alternative<std::string>(value);
+        case ParameterType::reals:
+        case ParameterType::file:
+            return std::holds_alternative<std::vector<double>>(value);
+        case ParameterType::sections:
+        case ParameterType::bands:
+            return std::holds_alternative<std::vector<std::vector<double>>>(value);
+    }
+    return false;
+}
+
+std::optional<Error> number_misfit(const Parameter& parameter, double number) {
+    if (!std::isfinite(number)) return misfit(parameter.name, number_text(number) + " is not finite", "Give a number.");
+    const std::string unit = parameter.unit.empty() ? "" : " " + std::string(parameter.unit);
+    if (number < parameter.minimum) {
+        return misfit(parameter.name,
+                      number_text(number) + unit + " is below the least, " + number_text(parameter.minimum) + unit,
+                      "Give " + number_text(parameter.minimum) + " or more.");
+    }
+    if (number > parameter.maximum) {
+        return misfit(parameter.name,
+                      number_text(number) + unit + " is above the largest, " + number_text(parameter.maximum) + unit,
+                      "Give " + number_text(parameter.maximum) + " or less.");
+    }
+    return std::nullopt;
+}
+
+std::optional<Error> numbers_misfit(const Parameter& parameter, const std::vector<double>& numbers) {
+    if (numbers.empty()) return misfit(parameter.name, "the array is empty", "Give at least one number.");
+    for (const double number : numbers) {
+        if (auto error = number_misfit(parameter, number)) return error;
+    }
+    return std::nullopt;
+}
+
+std::optional<Error> value_misfit(const Parameter& parameter, const ParameterValue& value) {
+    if (!type_fits(parameter.type, value)) {
+        return misfit(parameter.name, "needs " + std::string(type_text(parameter.type)), "");
+    }
+    if (const auto* whole = std::get_if<std::int64_t>(&value)) {
+        return number_misfit(parameter, static_cast<double>(*whole));
+    }
+    if (const auto* real = std::get_if<double>(&value)) return number_misfit(parameter, *real);
+    if (const auto* list = std::get_if<std::vector<double>>(&value)) return numbers_misfit(parameter, *list);
+    if (const auto* rows = std::get_if<std::vector<std::vector<double>>>(&value)) {
+        if (rows->empty()) return misfit(parameter.name, "the array is empty", "Give at least one row.");
+        for (const auto& row : *rows) {
+            if (auto error = numbers_misfit(parameter, row)) return error;
+        }
+        return std::nullopt;
+    }
+    const auto& text = *std::get_if<std::string>(&value);
+    const auto& choices = parameter.choices;
+    if (parameter.type == ParameterType::choice && std::find(choices.begin(), choices.end(), text) == choices.end()) {
+        return misfit(parameter.name, "\"" + text + "\" is not a choice", "Choices: " + listed(choices) + ".");
+    }
+    return std::nullopt;
+}
+
+}  // namespace
+
+std::optional<Error> misfit_of(const Recipe& recipe, const ParameterValues& values) {
+    for (const auto& [name, value] : values.all()) {
+        const Parameter* parameter = find_parameter(recipe, name);
+        if (parameter == nullptr) {
+            std::vector<std::string_view> known;
+            for (const Parameter& each : recipe.parameters) known.push_back(each.name);
+            return misfit(name, "\"" + std::string(recipe.name) + "\" has no such parameter",
+                          "Parameters: " + listed(known) + ".");
+        }
+        if (auto error = value_misfit(*parameter, value)) return error;
+    }
+    for (const Parameter& parameter : recipe.parameters) {
+        if (parameter.required && !values.has(parameter.name)) {
+            return misfit(parameter.name, "is missing, and \"" + std::string(recipe.name) + "\" needs it",
+                          "Give " + std::string(type_text(parameter.type)) + ".");
+        }
+    }
+    return std::nullopt;
+}
+
+std::string number_text(double value) {
+    std::array<char, 32> text{};
+    const auto end = std::to_chars(text.data(), text.data() + text.size(), value).ptr;
+    return std::string(text.data(), end);
+}
+
+}  // namespace halflsb
