@@ -12,14 +12,14 @@ namespace halflsb {
 /// All in value units of the signal (divide by lsb_value() for LSB).
 struct ErrorFigures {
     std::int64_t samples = 0;
-    double largest = 0.0;             ///< max |e|
-    std::int64_t largest_index = -1;  ///< of the first sample that reaches it; -1 when samples == 0
-    double rms = 0.0;
+    double largest = 0.0;             ///< max |e|; NaN as soon as one e is NaN
+    std::int64_t largest_index = -1;  ///< of the first sample that reaches it (the first NaN); -1 when samples == 0
+    double rms = 0.0;                 ///< of e, the mean not removed; infinite or NaN when an e is
     double bias = 0.0;                ///< mean of e
     bool identical = false;           ///< every e is exactly 0
-    std::optional<double> snr_db;     ///< 10 lg(sum reference^2 / sum e^2); none when identical or the reference is silent
-    std::int64_t first_beyond = -1;   ///< index of the first sample with not (|e| <= limit); -1 when none or no limit
-    std::int64_t beyond = 0;          ///< how many there are
+    std::optional<double> snr_db;  ///< 10 lg(sum reference^2 / sum e^2); none when identical or the reference is silent
+    std::int64_t first_beyond = -1;  ///< index of the first sample with not (|e| <= limit); -1 when none or no limit
+    std::int64_t beyond = 0;         ///< how many there are
 };
 
 /// Sums are compensated (sums.hpp), in the order of the samples: any split into blocks gives the

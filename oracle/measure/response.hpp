@@ -19,7 +19,7 @@ namespace halflsb {
 /// One estimated point of S_xe / S_xx.
 struct ResponsePoint {
     double cycles_per_sample = 0.0;
-    std::complex<double> difference;  ///< estimated H - H_design
+    std::complex<double> difference;  ///< estimated H - H_design; NaN where the stimulus has no power at all
     double stimulus_power = 0.0;      ///< mean |X|^2 of the windowed segments, for judging coverage
     std::int64_t averages = 0;
 };
@@ -41,7 +41,18 @@ std::size_t response_segment_for(std::int64_t length_samples);
 /// Bins k / segment, k = 0 .. segment / 2. A last incomplete segment is padded with zeros.
 std::unique_ptr<ResponseMeasure> make_welch_response(std::size_t segment);
 
-/// One point per tone, by correlation with a Hann window over the whole record of known length.
-std::unique_ptr<ResponseMeasure> make_tone_response(std::vector<double> tones_cycles_per_sample, std::int64_t length_samples);
+/// One point per tone, ascending, by correlation with a Hann window over the whole record of known length.
+/// The tones must be resolved (below). Samples beyond the length count nothing. Cost: about four
+/// multiply-adds a sample and tone.
+std::unique_ptr<ResponseMeasure> make_tone_response(std::vector<double> tones_cycles_per_sample,
+                                                    std::int64_t length_samples);
+
+/// Whether a Hann window over that many samples keeps the tones apart: each at least 4 / length from
+/// every other, from 0 and from 1/2. Its side lobes are then below -50 dB (Harris 1978), so a tone
+/// takes up at most 1/300 of a neighbour's *difference* from the design.
+bool tones_resolved(const std::vector<double>& tones_cycles_per_sample, std::int64_t length_samples);
+
+/// 20 lg |H|; minus infinity for 0.
+double gain_db(std::complex<double> response);
 
 }  // namespace halflsb

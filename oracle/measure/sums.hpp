@@ -2,19 +2,16 @@
 // endlicher Summen"): the error of the sum does not grow with the number of terms.
 #pragma once
 
-#include <cmath>
-
 namespace halflsb {
 
 class CompensatedSum {
 public:
     void add(double term) {
+        // The lost part by Knuth's (1969) branch-free formula: the same bits as Neumaier's two cases,
+        // without a jump that noise would make unpredictable.
         const double sum = sum_ + term;
-        if (std::fabs(sum_) >= std::fabs(term)) {
-            lost_ += (sum_ - sum) + term;
-        } else {
-            lost_ += (term - sum) + sum_;
-        }
+        const double used = sum - sum_;
+        lost_ += (sum_ - (sum - used)) + (term - used);
         sum_ = sum;
     }
     double value() const { return sum_ + lost_; }

@@ -1,0 +1,28 @@
+#include "oracle/filters/coefficients.hpp"
+
+#include <cmath>
+
+namespace halflsb {
+
+double rounded_coefficient(double coefficient, int fraction_bits) {
+    const double scaled = std::ldexp(coefficient, fraction_bits);
+    // From 2^52 on every double is whole: nothing to round, and nothing to lose by overflow.
+    if (!(std::fabs(scaled) < 0x1p52)) return coefficient;
+    return std::ldexp(std::round(scaled), -fraction_bits);
+}
+
+FilterStage with_rounded_coefficients(const FilterStage& stage) {
+    FilterStage rounded = stage;
+    if (!stage.coefficient_fraction_bits) return rounded;
+    const int bits = *stage.coefficient_fraction_bits;
+    if (auto* fir = std::get_if<Fir>(&rounded.design)) {
+        for (double& tap : fir->taps) tap = rounded_coefficient(tap, bits);
+    } else if (auto* cascade = std::get_if<BiquadCascade>(&rounded.design)) {
+        for (BiquadSection& s : cascade->sections) {
+            for (double* c : {&s.b0, &s.b1, &s.b2, &s.a1, &s.a2}) *c = rounded_coefficient(*c, bits);
+        }
+    }
+    return rounded;
+}
+
+}  // namespace halflsb
