@@ -66,7 +66,7 @@ struct WireFigures {
 struct WireLimits {
     Duration greet = seconds(5.0);     ///< for the whole greeting; HELLO is repeated meanwhile
     Duration answer = seconds(2.0);    ///< without any good frame while answers are due
-    Duration resend = seconds(0.25);   ///< without progress before sending again; at least 3 round trips of a full window are added
+    Duration resend = seconds(0.25);   ///< without progress before sending again; 3 round trips of what is in flight are added, but two resends fit into `answer`
     int block_samples = 256;           ///< asked for; less when the board holds less
 };
 
@@ -76,18 +76,23 @@ public:
     virtual Outcome<Greeting> greet() = 0;
     /// Opens a stream on that filter of the greeting, from reset, sample index 0.
     virtual Outcome<void> start(std::size_t filter_number) = 0;
-    /// How many samples send() takes now: 0 without credit, else at most a block.
+    /// How many samples send() takes now: 0 without credit, else at most a block. A sample is one instant:
+    /// with several channels it has a code for each, adjacent.
     virtual std::size_t room_samples() const = 0;
+    /// Takes 1 to room_samples() samples; more is an Error (kind defect) of the next advance().
     virtual void send(std::span<const Code> samples) = 0;
     /// Resets the filter before the next sample sent. Needs room_samples() > 0.
     virtual void send_reset() = 0;
     /// Moves bytes until samples arrived (all that are there, in order), or until `until` passes, or
     /// until credit came back. Every wait has a deadline: Error kind bench when the board is silent,
     /// refuses, or was restarted; the problem says what was awaited, how long, and what came instead.
+    /// With nothing in flight it returns at once. After an Error every call gives that Error.
     virtual Outcome<Received> advance(Instant until) = 0;
     virtual Outcome<BoardCounters> counters() = 0;
     virtual WireFigures figures() const = 0;
-    /// For reports: how many bytes a stream of so many samples needs in each direction.
+    /// For reports: the most bytes that a stream of so many samples needs in each direction without resends,
+    /// in blocks as they were granted. Exact while a frame's content is under 254 bytes; above that each zero
+    /// byte among the samples may save one (COBS).
     virtual std::int64_t bytes_to_board(std::int64_t samples) const = 0;
     virtual std::int64_t bytes_to_host(std::int64_t samples) const = 0;
 };
