@@ -1,0 +1,29 @@
+// An open file descriptor that closes itself.
+#pragma once
+
+#include <unistd.h>
+
+#include <utility>
+
+namespace halflsb {
+
+class Descriptor {
+public:
+    explicit Descriptor(int number = -1) : number_(number) {}
+    Descriptor(Descriptor&& other) noexcept : number_(std::exchange(other.number_, -1)) {}
+    Descriptor& operator=(Descriptor&& other) noexcept {
+        std::swap(number_, other.number_);
+        return *this;
+    }
+    ~Descriptor() { close_now(); }
+
+    bool is_open() const { return number_ >= 0; }
+    int number() const { return number_; }
+    /// What close() said: the last chance of some file systems to report a lost write.
+    int close_now() { return number_ < 0 ? 0 : ::close(std::exchange(number_, -1)); }
+
+private:
+    int number_;
+};
+
+}  // namespace halflsb
