@@ -1,0 +1,56 @@
+// The folder of a run: what docs/run-folder.md describes, written so that a crash loses nothing that
+// was finished.
+//
+// It is proved writable before the board is touched. Every file is written beside its name and then
+// renamed (runner/world/files.hpp).
+#pragma once
+
+#include <optional>
+#include <string>
+#include <string_view>
+
+#include "runner/world/files.hpp"
+#include "runner/world/result.hpp"
+
+namespace halflsb {
+
+struct RunFolderWish {
+    std::string started_utc;         ///< "2026-12-01T09:30:00Z"
+    std::string plan_file;           ///< its name is part of the folder's
+    std::optional<std::string> out;  ///< --out; none: .halflsb/<UTC time>-<plan>/ in the current folder
+};
+
+class RunFolder {
+public:
+    const std::string& path() const { return path_; }
+    /// Of a file of the folder: path() + "/" + file.
+    std::string path_of(std::string_view file) const;
+
+    /// plan.toml and rig.toml, as they were.
+    Outcome<void> save_inputs(const std::string& plan_text, const std::string& rig_text);
+    /// run.json and junit.xml anew: after each case, and once more with `finished` at the end.
+    Outcome<void> save(const RunResult& run, bool finished, const std::string& junit_xml);
+
+private:
+    friend Outcome<RunFolder> open_run_folder(Files& files, const RunFolderWish& wish);
+    RunFolder(Files& files, std::string path) : files_(&files), path_(std::move(path)) {}
+
+    Files* files_;
+    std::string path_;
+};
+
+/// Makes the folder and proves that a file can be written in it. A default folder that exists gets
+/// "-2", "-3", ... at its end, without a race between two runs; --out takes a new or an empty folder
+/// and refuses any other, because a record must not mix two runs. `files` must outlive the RunFolder.
+/// Errors are of kind output, the place is the path.
+Outcome<RunFolder> open_run_folder(Files& files, const RunFolderWish& wish);
+
+/// Below the run's folder: "captures/003-mains-hum-half-scale.npy". The number keeps two names apart
+/// that become the same.
+std::string capture_file_name(std::size_t case_number, std::string_view case_name);
+
+/// `text` as a part of a file name: ASCII letters, digits, "-", "_" and "." stay, every run of others
+/// becomes one "-", at most 60 characters, never empty and never hidden.
+std::string file_name_part(std::string_view text);
+
+}  // namespace halflsb

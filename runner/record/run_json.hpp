@@ -1,0 +1,16 @@
+// run.json: everything a run came to, for programs. docs/run-folder.md names each key.
+#pragma once
+
+#include <string>
+
+#include "runner/world/result.hpp"
+
+namespace halflsb {
+
+inline constexpr int run_json_version = 1;
+
+/// The whole document. `finished` is false while cases are still to come; a reader that finds it
+/// false in a folder nobody writes to knows that the program died.
+std::string run_json(const RunResult& run, bool finished);
+
+}  // namespace halflsb

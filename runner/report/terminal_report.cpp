@@ -1,0 +1,202 @@
+#include "runner/report/terminal_report.hpp"
+
+#include <algorithm>
+
+#include "runner/report/people.hpp"
+#include "runner/report/rule_report.hpp"
+#include "runner/world/cautions.hpp"
+#include "runner/world/printable.hpp"
+
+namespace halflsb {
+
+namespace {
+
+constexpr std::size_t field_columns = 12;   // two blanks, the longest key, a gap of two
+constexpr std::size_t verdict_columns = 9;  // "undecided"
+
+std::string field(const TextStyle& style, std::string_view key, const std::string& value) {
+    std::string lines = wrapped(style, value, field_columns);
+    lines.replace(0, std::min(field_columns, lines.size()), padded("  " + std::string(key), field_columns));
+    return lines;
+}
+
+std::string titled(const std::string& file, const std::string& title) {
+    return title.empty() ? printable(file) : printable(file) + ", " + printable(title);
+}
+
+Ink ink_of(CaseVerdict verdict) {
+    switch (verdict) {
+        case CaseVerdict::pass:
+            return Ink::good;
+        case CaseVerdict::fail:
+            return Ink::bad;
+        case CaseVerdict::invalid:
+        case CaseVerdict::undecided:
+            break;
+    }
+    return Ink::doubtful;
+}
+
+std::string firmware_text(const RunResult& run) {
+    const std::string id = run.board.build_id.empty() ? "no build-id" : "build-id " + printable(run.board.build_id);
+    if (run.firmware.state == FirmwareCheck::State::agrees) {
+        return id + ", agrees with " + printable(run.firmware.image_file) +
+               (run.firmware.before_run_skipped ? " (before_run skipped: the board already runs it)" : "");
+    }
+    return id + ", not verified";
+}
+
+/// What stands at the end of a case's line.
+std::string case_brief(const CaseResult& result) {
+    std::string brief;
+    const auto add = [&](const std::string& part) {
+        if (!part.empty()) brief += (brief.empty() ? "" : ", ") + part;
+    };
+    if (result.verdict == CaseVerdict::invalid) return "nothing judged";
+    if (result.verdict == CaseVerdict::pass) {
+        for (const RuleVerdict& rule : result.rules) add(rule_brief(rule));
+    } else {
+        const Verdict blamed = result.verdict == CaseVerdict::fail ? Verdict::fail : Verdict::undecided;
+        for (const RuleVerdict& rule : result.rules) {
+            if (rule.verdict == blamed) add(std::string(kind_name(rule.rule)));
+        }
+    }
+    if (result.grade == Grade::plausible) add("capture plausible, not proven");
+    return brief;
+}
+
+std::string case_line(const RunResult& run, std::size_t index, const TextStyle& style) {
+    const CaseResult& result = run.cases[index];
+    const std::string total = std::to_string(std::max(run.cases_planned.size(), run.cases.size()));
+    const std::string place = padded_left(std::to_string(index + 1), total.size()) + "/" + total;
+
+    std::size_t longest = columns_of(printable(result.name));
+    for (const std::string& name : run.cases_planned) longest = std::max(longest, columns_of(printable(name)));
+    const auto width = static_cast<std::size_t>(std::max(style.width, 40));
+    const std::size_t beside_name = columns_of(place) + 2 + 2 + verdict_columns;
+    // Names get what is left of half the line, so that the figures have the other half.
+    const std::size_t name_columns =
+        std::min(longest, std::max<std::size_t>(16, width / 2 + 4 - std::min(width / 2, beside_name)));
+
+    std::string line = place + "  " + padded(cut_to(style, printable(result.name), name_columns), name_columns) + "  ";
+    const std::string brief = case_brief(result);
+    const bool fits = columns_of(line) + verdict_columns + 2 + columns_of(brief) <= width;
+    const std::string_view word = name_of(result.verdict);
+    line += painted(style, ink_of(result.verdict), word);
+    if (brief.empty()) return line + "\n";
+    if (fits)
+        return line + std::string(verdict_columns - std::min(verdict_columns, word.size()) + 2, ' ') + brief + "\n";
+    return line + "\n" + wrapped(style, brief, columns_of(place) + 2);
+}
+
+std::string invalid_block(const CaseResult& result, const TextStyle& style) {
+    std::string out;
+    if (result.invalid) {
+        out += wrapped(style, printable_lines(to_text(*result.invalid)), 2);
+    } else {
+        out += "  the capture is broken, and nobody said why\n";
+    }
+    const StreamFacts& stream = result.stream;
+    out += wrapped(style,
+                   "capture " + std::string(name_of(result.grade)) + ": " + count_text(stream.samples_received) +
+                       " of " + counted(stream.samples_sent, "sample", "samples") + " sent came back; bad frames " +
+                       std::to_string(stream.frames_bad_at_host) + " here and " +
+                       std::to_string(stream.frames_bad_at_board) + " at the board, " +
+                       std::to_string(stream.bytes_lost_at_board) + " bytes lost and " +
+                       std::to_string(stream.gaps_at_board) + " gaps at the board, " +
+                       counted(stream.resends, "resend", "resends"),
+                   2);
+    return out;
+}
+
+}  // namespace
+
+std::string not_seen_from(std::string_view injection) {
+    if (injection == "call") return "not seen there: the sampling interrupt, DMA, the converter and the analogue path";
+    if (injection == "buffer") return "not seen there: DMA, the converter and the analogue path";
+    if (injection == "converter") return "not seen there: the analogue path";
+    return "what that point cannot show is not known to this version; the analogue path is never seen";
+}
+
+std::string start_text(const RunResult& run, const TextStyle& style) {
+    std::string out = "halflsb " + printable(run.tool_version) + "\n";
+    out += field(style, "plan", titled(run.plan_file, run.title));
+    out += field(style, "rig", titled(run.rig_file, run.board.rig_name));
+    out += field(style, "port", printable(run.board.link));
+    return out;
+}
+
+std::string board_text(const RunResult& run, std::optional<double> wire_s, const TextStyle& style) {
+    const std::string serial = run.board.serial.empty() ? "no serial number" : "serial " + printable(run.board.serial);
+    std::string out = field(style, "board", serial);
+    out += field(style, "firmware", firmware_text(run));
+    out += field(style, "filter",
+                 printable(run.board.filter) + ", samples enter at " + printable(run.board.injection) + "; " +
+                     not_seen_from(run.board.injection));
+    out += field(style, "signal",
+                 std::string(run.signal.input.name) + " in, " + std::string(run.signal.output.name) + " out, " +
+                     rate_text(run.signal.rate_hz));
+    out += field(style, "cases",
+                 counted(static_cast<std::int64_t>(run.cases_planned.size()), "case", "cases") +
+                     (wire_s ? ", " + duration_text(*wire_s) + " on the wire" : ", time on the wire not known"));
+    return out;
+}
+
+std::string case_text(const RunResult& run, std::size_t index, const TextStyle& style) {
+    const CaseResult& result = run.cases[index];
+    std::string out = case_line(run, index, style);
+    if (result.verdict == CaseVerdict::pass) return out;
+    if (result.verdict == CaseVerdict::invalid) {
+        out += invalid_block(result, style);
+    } else {
+        std::string briefs;
+        for (const RuleVerdict& rule : result.rules) {
+            if (rule.verdict == Verdict::pass) {
+                const std::string kind(kind_name(rule.rule));
+                std::string brief = rule_brief(rule);
+                if (brief.rfind(kind + " ", 0) == 0) brief.erase(0, kind.size() + 1);
+                briefs += wrapped(style, kind + ": pass" + (brief.empty() ? "" : ", " + brief), 2);
+            } else {
+                out += rule_block(rule, run.signal, style);
+            }
+        }
+        out += briefs;
+    }
+    // Not wrapped: a command is copied as one line.
+    if (!result.rerun.empty()) out += "  rerun: " + printable(result.rerun) + "\n";
+    return out;
+}
+
+std::string summary_text(const RunResult& run, const TextStyle& style) {
+    const Counts counts = run.counts();
+    std::string out;
+    for (const std::string& warning : run.warnings) out += wrapped(style, "warning: " + printable_lines(warning), 0);
+    if (run.ended_by) out += wrapped(style, "stopped: " + printable_lines(to_text(*run.ended_by)), 0);
+    const auto part = [&](std::size_t count, Ink ink, const char* word) {
+        return painted(style, count > 0 ? ink : Ink::plain, std::to_string(count) + " " + word);
+    };
+    out += part(counts.pass, Ink::good, "pass") + ", " + part(counts.fail, Ink::bad, "fail") + ", " +
+           part(counts.invalid, Ink::doubtful, "invalid") + ", " + part(counts.undecided, Ink::doubtful, "undecided") +
+           ", " + part(counts.not_run, Ink::doubtful, "not run") + "\n";
+    if (!run.latency_verified())
+        out += wrapped(style, "latency not verified: no case that ran could tell its latency", 0);
+    if (run.firmware.state != FirmwareCheck::State::agrees) {
+        out += wrapped(style, "firmware not verified: --image FILE compares the board's build-id with a file's", 0);
+    }
+    // Not wrapped: a path is copied as one line.
+    if (!run.folder.empty()) out += "run folder: " + printable(run.folder) + "\n";
+    return out + wrapped(style, evidence_caution(), 0);
+}
+
+std::string error_text(const Error& error, const TextStyle& style) {
+    // Not wrapped: a quoted line of a file and the caret below it must stay as they are.
+    return painted(style, Ink::bad, "halflsb:") + " " + printable_lines(to_text(error)) + "\n";
+}
+
+std::string cautions_text(const TextStyle& style) {
+    std::string out;
+    for (const std::string_view sentence : cautions()) out += wrapped(style, sentence, 0);
+    return out;
+}
+
+}  // namespace halflsb

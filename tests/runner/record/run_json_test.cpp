@@ -1,0 +1,166 @@
+#include "runner/record/run_json.hpp"
+
+#include <catch2/catch.hpp>
+#include <clocale>
+#include <cmath>
+#include <limits>
+#include <nlohmann/json.hpp>
+#include <random>
+
+#include "runner/record/json_text.hpp"
+#include "tests/runner/report/sample_run.hpp"
+
+using namespace halflsb;
+using Json = nlohmann::ordered_json;
+
+namespace {
+
+Json parsed(const RunResult& run, bool finished = true) { return Json::parse(run_json(run, finished)); }
+
+}  // namespace
+
+TEST_CASE("run.json: versioned, with the run's facts under keys that hold their units", "[record]") {
+    RunResult run = sample::run();
+    run.seed = 18446744073709551615u;
+    run.warnings = {"one", "two"};
+    const Json json = parsed(run);
+    CHECK(json.at("format") == "halflsb run");
+    CHECK(json.at("format_version") == 1);
+    CHECK(json.at("tool_version") == "0.1.0");
+    CHECK(json.at("finished") == true);
+    CHECK(parsed(run, false).at("finished") == false);
+    CHECK(json.at("started_utc") == "2026-12-01T09:30:00Z");
+    CHECK(json.at("elapsed_s") == 1.5);
+    CHECK(json.at("plan") == Json{{"file", "cw7.toml"}, {"sha256", std::string(64, 'b')}});
+    CHECK(json.at("rig") == Json{{"file", "bench.toml"}, {"sha256", std::string(64, 'c')}});
+    CHECK(json.at("seed") == 18446744073709551615u);
+    CHECK(json.at("signal").at("rate_hz") == 1200.0);
+    CHECK(json.at("signal").at("input") == "q15");
+    CHECK(json.at("signal").at("unit").is_null());
+    CHECK(json.at("signal").at("quantise") == "half-up");
+    CHECK(json.at("board").at("build_id") == "3fa2b19c");
+    CHECK(json.at("board").at("tick_hz") == 168000000);
+    CHECK(json.at("firmware").at("verified") == false);
+    CHECK(json.at("firmware").at("image_file").is_null());
+    CHECK(json.at("latency_verified") == true);
+    CHECK(json.at("counts") == Json{{"pass", 1}, {"fail", 1}, {"invalid", 1}, {"undecided", 1}, {"not_run", 1}});
+    CHECK(json.at("ended_by").is_null());
+    CHECK(json.at("warnings") == Json{"one", "two"});
+    CHECK(json.at("cases_planned").size() == 5);
+    CHECK(json.at("cases").size() == 4);
+}
+
+TEST_CASE("run.json: a case carries verdict, grade, figures, neighbours, capture and rerun", "[record]") {
+    const Json json = parsed(sample::run());
+    const Json& failed = json.at("cases").at(1);
+    CHECK(failed.at("number") == 2);
+    CHECK(failed.at("verdict") == "fail");
+    CHECK(failed.at("grade") == "proven");
+    CHECK(failed.at("invalid").is_null());
+    CHECK(failed.at("capture").at("file") == "captures/002-mains-hum-half-scale.npy");
+    CHECK(failed.at("stream").at("to_board_bytes") == 4400);
+    CHECK(failed.at("stream").at("line_use_ratio") == 0.97);
+    const Json& rule = failed.at("rules").at(0);
+    CHECK(rule.at("kind") == "error");
+    CHECK(rule.at("implicit") == false);
+    CHECK(rule.at("reference") == "declared");
+    CHECK(rule.at("position") == Json{{"file", "cw7.toml"}, {"line", 20}, {"column", 3}});
+    CHECK(rule.at("verdict") == "fail");
+    CHECK(rule.at("reason") == "3 of 2048 samples beyond max");
+    CHECK(rule.at("figures").at(0) == Json{{"name", "max"},
+                                           {"value", 1.5},
+                                           {"limit", 0.5},
+                                           {"margin", -1.0},
+                                           {"unit", "LSB"},
+                                           {"at_least", false},
+                                           {"passed", false},
+                                           {"note", nullptr}});
+    CHECK(rule.at("first_bad").at("index_samples") == 1041);
+    CHECK(rule.at("first_bad").at("first_index_samples") == 1039);
+    CHECK(rule.at("first_bad").at("response_codes") == Json{16370, 16371, 16370, 16371, 16372});
+    CHECK(rule.at("first_bad").at("reference_lsb").at(2) == 16371.5);
+    CHECK(failed.at("rules").at(1).at("implicit") == true);
+
+    const Json& invalid = json.at("cases").at(2);
+    CHECK(invalid.at("capture").is_null());
+    CHECK(invalid.at("rules") == Json::array());
+    CHECK(invalid.at("invalid").at("kind") == "bench");
+    CHECK(invalid.at("invalid").at("place") == "/dev/ttyUSB0");
+}
+
+TEST_CASE("run.json: what was not measured is null, NaN and infinity too", "[record]") {
+    RunResult run = sample::run();
+    run.elapsed_s = std::nan("");
+    run.signal.output = sample::f32();
+    run.cases[0].stream.line_use_ratio.reset();
+    run.cases[0].rules[0].figures[0] = {"snr", std::nullopt, 60.0, std::nullopt, "dB", true, true, "identical"};
+    JudgedFigure& figure = run.cases[1].rules[0].figures[0];
+    figure.value = std::numeric_limits<double>::infinity();
+    figure.margin = -std::numeric_limits<double>::infinity();
+    run.cases[1].rules[0].first_bad->reference = {std::nan("")};
+    const std::string text = run_json(run, true);
+    CHECK(text.find("nan") == std::string::npos);
+    CHECK(text.find("inf\"") == std::string::npos);
+    CHECK(text.find("Infinity") == std::string::npos);
+    const Json json = Json::parse(text);
+    CHECK(json.at("elapsed_s").is_null());
+    CHECK(json.at("cases").at(0).at("stream").at("line_use_ratio").is_null());
+    const Json& snr = json.at("cases").at(0).at("rules").at(0).at("figures").at(0);
+    CHECK(snr.at("value").is_null());
+    CHECK(snr.at("identical") == true);
+    const Json& judged = json.at("cases").at(1).at("rules").at(0).at("figures").at(0);
+    CHECK(judged.at("value").is_null());
+    CHECK(judged.at("margin").is_null());
+    CHECK_FALSE(judged.contains("identical"));
+    CHECK(json.at("cases").at(1).at("rules").at(0).at("first_bad").at("reference_value") == Json::array({nullptr}));
+}
+
+TEST_CASE("run.json: what ended the run is an error with its kind", "[record]") {
+    RunResult run = sample::run();
+    const std::pair<ErrorKind, const char*> kinds[] = {{ErrorKind::usage, "usage"},
+                                                       {ErrorKind::input, "input"},
+                                                       {ErrorKind::bench, "bench"},
+                                                       {ErrorKind::output, "output"},
+                                                       {ErrorKind::interrupted, "interrupted"},
+                                                       {ErrorKind::defect, "defect"}};
+    for (const auto& [kind, name] : kinds) {
+        run.ended_by = Error{kind, "", "it stopped", "start again"};
+        CHECK(parsed(run).at("ended_by") ==
+              Json{{"kind", name}, {"place", nullptr}, {"problem", "it stopped"}, {"remedy", "start again"}});
+    }
+}
+
+TEST_CASE("run.json: hostile text comes back, bytes that are no UTF-8 as U+FFFD", "[record]") {
+    RunResult run = sample::run();
+    run.title = "\"\\\n\x01\x1b</script>\xff";
+    const std::string text = run_json(run, true);
+    CHECK(text.find('\x1b') == std::string::npos);
+    CHECK(Json::parse(text).at("title") == "\"\\\n\x01\x1b</script>\xEF\xBF\xBD");
+}
+
+TEST_CASE("json text: a number is the shortest that reads back as the same double", "[record]") {
+    CHECK(json_text(Json(0.544099104)) == "0.544099104\n");
+    CHECK(json_text(Json(0.17357794)) == "0.17357794\n");
+    CHECK(json_text(Json(-0.0)) == "-0\n");
+    CHECK(json_text(Json(1e300)) == "1e+300\n");
+    CHECK(json_text(Json(1.5)) == "1.5\n");
+    CHECK(json_text(Json(std::nan(""))) == "null\n");
+
+    const std::uint64_t seed = 20261201;
+    INFO("seed " << seed);
+    std::mt19937_64 bits(seed);
+    for (int i = 0; i < 20000; ++i) {
+        // Nine digits, as every judged figure has: the text must be those, never 17 of them.
+        const std::string digits = "0.1" + std::to_string(10000000 + bits() % 90000000);
+        const double value = std::stod(digits);
+        std::string text = json_text(Json(value));
+        text.pop_back();
+        REQUIRE(Json::parse(text).get<double>() == value);
+        REQUIRE(text.size() <= digits.size());
+    }
+}
+
+TEST_CASE("json text: plain arrays stand on one line, others are indented", "[record]") {
+    CHECK(json_text(Json{{"a", {1, 2.5, nullptr}}, {"b", Json::array({Json::object()})}, {"c", Json::array()}}) ==
+          "{\n  \"a\": [1, 2.5, null],\n  \"b\": [\n    {}\n  ],\n  \"c\": []\n}\n");
+}
