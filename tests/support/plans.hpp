@@ -1,0 +1,68 @@
+// Plans for tests, made in memory: a moving average in Q15 unless the test says otherwise.
+#pragma once
+
+#include <catch2/catch.hpp>
+#include <string>
+#include <utility>
+#include <vector>
+
+#include "oracle/arithmetic/declared.hpp"
+#include "oracle/judge/plan.hpp"
+
+namespace halflsb::test {
+
+inline ParameterValues values(std::vector<std::pair<std::string, ParameterValue>> list) {
+    ParameterValues made;
+    for (auto& [name, value] : list) made.set(name, std::move(value));
+    return made;
+}
+
+inline Plan moving_average_plan(int points = 16) {
+    Plan plan;
+    plan.title = "a plan";
+    plan.file = "plan.toml";
+    plan.signal.rate_hz = 1200.0;
+    plan.signal.input = *sample_format("q15");
+    plan.signal.output = *sample_format("q15");
+    plan.filter.push_back({MovingAverage{points}, std::nullopt});
+    return plan;
+}
+
+inline Rule rule(const Plan& plan, const std::string& kind, const ParameterValues& given) {
+    const SampleFormat& output = plan.signal.output;
+    const RuleContext context{plan.signal.rate_hz, output.has_lsb(),
+                              output.has_lsb() ? full_scale_value(output) / lsb_value(output) : 0.0, plan.signal.full_scale_unit};
+    auto made = make_rule(kind, given, context);
+    REQUIRE(made);
+    made->position = {"plan.toml", 20, 1};
+    return *made;
+}
+
+inline Rule implicit_latency() { return {LatencyRule{0, true}, {"plan.toml", 10, 1}}; }
+
+inline Case a_case(const Plan& plan, const std::string& shape, const ParameterValues& given, std::vector<Rule> rules) {
+    Case made;
+    made.name = "a case";
+    made.shape = shape;
+    made.stimulus_values = given;
+    auto stimulus = make_stimulus(shape, given, {plan.signal.rate_hz, plan.signal.input});
+    REQUIRE(stimulus);
+    made.stimulus = std::move(*stimulus);
+    made.rules = std::move(rules);
+    made.position = {"plan.toml", 10, 1};
+    return made;
+}
+
+/// What a right board returns: the declared reference, rounded once, half up.
+inline std::vector<Code> right_response(const Plan& plan, const Case& the_case) {
+    const auto length = static_cast<std::size_t>(the_case.stimulus->length_samples());
+    std::vector<Code> codes(length);
+    std::vector<double> in(length), out(length);
+    fill_codes(*the_case.stimulus, plan.signal.input, plan.signal.quantise, 0, codes);
+    values_of(plan.signal.input, codes, in);
+    make_declared_filter(plan.filter, plan.signal.output, plan.signal.output_per_input)->process(in, out);
+    for (std::size_t n = 0; n < length; ++n) codes[n] = code_of(plan.signal.output, out[n], Rounding::half_up);
+    return codes;
+}
+
+}  // namespace halflsb::test
