@@ -9,7 +9,7 @@
 #include <memory>
 #include <string_view>
 
-#include "runner/world/descriptor.hpp"
+#include "runner/world/file_descriptor.hpp"
 #include "runner/world/files.hpp"
 
 namespace halflsb {
@@ -65,7 +65,7 @@ Outcome<void> check_regular(const std::string& place, const struct stat& facts, 
 }
 
 /// Everything behind the descriptor, which must be of a regular file.
-Outcome<std::string> read_all(const std::string& place, const Descriptor& file, std::size_t cap_bytes) {
+Outcome<std::string> read_all(const std::string& place, const FileDescriptor& file, std::size_t cap_bytes) {
     struct stat facts {};
     if (fstat(file.number(), &facts) != 0) return reading_error(place, errno);
     if (auto regular = check_regular(place, facts, cap_bytes); !regular) return regular.error();
@@ -87,13 +87,13 @@ Outcome<std::string> read_all(const std::string& place, const Descriptor& file, 
 
 /// The last part of a resolved path, opened part by part without following a link: what was resolved
 /// and checked cannot be exchanged for a link in between.
-Outcome<Descriptor> open_without_links(const std::string& place, const std::string& root, std::string_view inside,
-                                       std::size_t cap_bytes) {
-    Descriptor folder(open(root.c_str(), O_PATH | O_DIRECTORY | O_CLOEXEC));
+Outcome<FileDescriptor> open_without_links(const std::string& place, const std::string& root, std::string_view inside,
+                                           std::size_t cap_bytes) {
+    FileDescriptor folder(open(root.c_str(), O_PATH | O_DIRECTORY | O_CLOEXEC));
     if (!folder.is_open()) return reading_error(place, errno);
     for (std::size_t slash = inside.find('/'); slash != std::string_view::npos; slash = inside.find('/')) {
         const std::string name(inside.substr(0, slash));
-        Descriptor next(openat(folder.number(), name.c_str(), O_PATH | O_DIRECTORY | O_NOFOLLOW | O_CLOEXEC));
+        FileDescriptor next(openat(folder.number(), name.c_str(), O_PATH | O_DIRECTORY | O_NOFOLLOW | O_CLOEXEC));
         if (!next.is_open()) return reading_error(place, errno);
         folder = std::move(next);
         inside.remove_prefix(slash + 1);
@@ -102,7 +102,7 @@ Outcome<Descriptor> open_without_links(const std::string& place, const std::stri
     struct stat facts {};
     if (fstatat(folder.number(), name.c_str(), &facts, AT_SYMLINK_NOFOLLOW) != 0) return reading_error(place, errno);
     if (auto regular = check_regular(place, facts, cap_bytes); !regular) return regular.error();
-    Descriptor file(openat(folder.number(), name.c_str(), reading_flags | O_NOFOLLOW));
+    FileDescriptor file(openat(folder.number(), name.c_str(), reading_flags | O_NOFOLLOW));
     if (!file.is_open()) return reading_error(place, errno);
     return file;
 }
@@ -113,7 +113,7 @@ Outcome<std::string> DiskFiles::read(const std::string& path, std::size_t cap_by
     struct stat facts {};
     if (stat(path.c_str(), &facts) != 0) return reading_error(path, errno);
     if (auto regular = check_regular(path, facts, cap_bytes); !regular) return regular.error();
-    const Descriptor file(open(path.c_str(), reading_flags));
+    const FileDescriptor file(open(path.c_str(), reading_flags));
     if (!file.is_open()) return reading_error(path, errno);
     return read_all(path, file, cap_bytes);
 }

@@ -7,7 +7,7 @@
 #include <cstring>
 #include <memory>
 
-#include "runner/world/descriptor.hpp"
+#include "runner/world/file_descriptor.hpp"
 #include "runner/world/files.hpp"
 
 namespace halflsb {
@@ -61,7 +61,7 @@ std::string folder_of(const std::string& path) {
 
 class DiskOutputFile final : public OutputFile {
 public:
-    DiskOutputFile(std::string path, Descriptor file) : path_(std::move(path)), file_(std::move(file)) {}
+    DiskOutputFile(std::string path, FileDescriptor file) : path_(std::move(path)), file_(std::move(file)) {}
     ~DiskOutputFile() override { discard(); }
     DiskOutputFile(const DiskOutputFile&) = delete;
     DiskOutputFile& operator=(const DiskOutputFile&) = delete;
@@ -102,7 +102,7 @@ public:
         }
         done_ = true;
         // The new name must survive a power cut as well. Not every file system can be asked; the bytes are safe.
-        const Descriptor folder(open(folder_of(path_).c_str(), O_RDONLY | O_DIRECTORY | O_CLOEXEC));
+        const FileDescriptor folder(open(folder_of(path_).c_str(), O_RDONLY | O_DIRECTORY | O_CLOEXEC));
         if (folder.is_open()) (void)fsync(folder.number());
         return {};
     }
@@ -117,7 +117,7 @@ private:
     std::string part_path() const { return path_ + ".part"; }
 
     std::string path_;
-    Descriptor file_;
+    FileDescriptor file_;
     bool done_ = false;
 };
 
@@ -127,8 +127,8 @@ Outcome<std::unique_ptr<OutputFile>> DiskFiles::open_output(const std::string& p
     struct stat facts {};
     if (stat(path.c_str(), &facts) == 0 && S_ISDIR(facts.st_mode)) return writing_error(path, EISDIR);
     // A part left by a crash is replaced; O_NOFOLLOW so that a link of that name is never written through.
-    Descriptor file(open((path + ".part").c_str(),
-                         O_RDWR | O_CREAT | O_TRUNC | O_NOFOLLOW | O_NONBLOCK | O_NOCTTY | O_CLOEXEC, 0666));
+    FileDescriptor file(open((path + ".part").c_str(),
+                             O_RDWR | O_CREAT | O_TRUNC | O_NOFOLLOW | O_NONBLOCK | O_NOCTTY | O_CLOEXEC, 0666));
     if (!file.is_open()) return writing_error(path, errno);
     return std::unique_ptr<OutputFile>(std::make_unique<DiskOutputFile>(path, std::move(file)));
 }

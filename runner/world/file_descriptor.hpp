@@ -7,15 +7,15 @@
 
 namespace halflsb {
 
-class Descriptor {
+class FileDescriptor {
 public:
-    explicit Descriptor(int number = -1) : number_(number) {}
-    Descriptor(Descriptor&& other) noexcept : number_(std::exchange(other.number_, -1)) {}
-    Descriptor& operator=(Descriptor&& other) noexcept {
+    explicit FileDescriptor(int number = -1) : number_(number) {}
+    FileDescriptor(FileDescriptor&& other) noexcept : number_(std::exchange(other.number_, -1)) {}
+    FileDescriptor& operator=(FileDescriptor&& other) noexcept {
         std::swap(number_, other.number_);
         return *this;
     }
-    ~Descriptor() { close_now(); }
+    ~FileDescriptor() { close_now(); }
 
     bool is_open() const { return number_ >= 0; }
     int number() const { return number_; }

@@ -1,0 +1,167 @@
+#include "runner/config/plan_file.hpp"
+
+#include <algorithm>
+#include <map>
+
+#include "oracle/judge/admission.hpp"
+#include "oracle/judge/case_judge.hpp"
+#include "runner/config/document.hpp"
+#include "runner/config/plan_reader.hpp"
+#include "runner/config/plan_words.hpp"
+#include "runner/config/shown_number.hpp"
+
+namespace halflsb {
+
+namespace {
+
+/// A case's own rule takes the place of those for every case of the same kind; the latency of 0 that
+/// every case has without asking comes last.
+void add_common_rules(Case& the_case, const std::vector<Rule>& common) {
+    const std::vector<Rule> own = the_case.rules;
+    const auto kind_is = [](const Rule& a) { return [&a](const Rule& b) { return a.kind.index() == b.kind.index(); }; };
+    for (const Rule& rule : common) {
+        if (std::none_of(own.begin(), own.end(), kind_is(rule))) the_case.rules.push_back(rule);
+    }
+    const Rule latency{LatencyRule{0, true}, the_case.position};
+    if (std::none_of(the_case.rules.begin(), the_case.rules.end(), kind_is(latency))) the_case.rules.push_back(latency);
+}
+
+Place place_of(const PlanPosition& position) { return {position.line, position.column}; }
+
+/// A latency rule for every case is asked of the cases that can tell it and left to them by the others,
+/// as the implicit one is; when none can, it is refused.
+void settle_common_latency(Plan& plan, const std::vector<Rule>& common, Problems& problems) {
+    const auto written = std::find_if(common.begin(), common.end(),
+                                      [](const Rule& r) { return std::holds_alternative<LatencyRule>(r.kind); });
+    if (written == common.end()) return;
+    bool is_asked = false, is_told = false;
+    for (Case& the_case : plan.cases) {
+        for (Rule& rule : the_case.rules) {
+            auto* latency = std::get_if<LatencyRule>(&rule.kind);
+            if (latency == nullptr || rule.position.line != written->position.line) continue;
+            is_asked = true;
+            latency->implicit = !latency_evidence(plan, the_case).can_tell;
+            is_told = is_told || !latency->implicit;
+        }
+    }
+    if (is_asked && !is_told) {
+        problems.add(place_of(written->position), "no case of this plan can tell its latency",
+                     "add a case with noise (shape = \"noise\", level_ratio = 0.5, length_samples = 4096), or leave "
+                     "the rule out");
+    }
+}
+
+class PlanFile {
+public:
+    PlanFile(const Document& document, const std::string& path, const Files& files, const PlanOptions& options)
+        : tree_(document.tree),
+          path_(path),
+          options_(options),
+          problems_(document.source),
+          context_{problems_, files, options.root.empty() ? folder_of(path) : options.root, std::nullopt} {}
+
+    std::variant<Plan, ReadProblems> read() {
+        TableReader top(context_, tree_, "");
+        const ParameterValues values = top.parameters(plan_recipe());
+        // All words of the top are known before the tables below are read: the trap of a top-level key
+        // under a header is told by them.
+        for (const std::string_view key : {"signal", "filter", "rule", "case"}) top.entry(key);
+        const auto signal = read_signal(context_, top);
+        if (signal) context_.nyquist_hz = signal->rate_hz / 2.0;
+        auto chain = read_filters(context_, top);
+        const Signal* known_signal = signal ? &*signal : nullptr;
+        const ReadRules common = read_rules(context_, top, known_signal, path_);
+        std::vector<ReadCase> cases = read_cases(top, known_signal);
+        check_presence(top, common, cases);
+        top.refuse_unknown_keys();
+
+        if (signal && chain && common.is_clean) admit(*signal, *chain, common.rules, cases);
+        if (problems_.count() > 0) return problems_.sorted();
+        plan_.title = *values.text(plan_recipe(), "title");
+        return std::move(plan_);
+    }
+
+private:
+    std::vector<ReadCase> read_cases(TableReader& top, const Signal* signal) {
+        std::vector<ReadCase> cases;
+        std::map<std::string, int> lines;
+        for (const TomlValue* table : top.tables("case")) {
+            cases.push_back(read_case(context_, *table, top, signal, path_, options_.seed));
+            const ReadCase& read = cases.back();
+            if (!read.name_place) continue;
+            const auto [first, is_new] = lines.emplace(read.the_case.name, read.name_place->line);
+            if (is_new) continue;
+            problems_.add(*read.name_place,
+                          "two cases are called " + quoted(read.the_case.name) + ", the other one in line " +
+                              std::to_string(first->second),
+                          "give each case a name of its own; --case chooses by it");
+        }
+        return cases;
+    }
+
+    void check_presence(TableReader& top, const ReadRules& common, const std::vector<ReadCase>& cases) {
+        if (tree_.find("case") == nullptr || (cases.empty() && tree_.find("case")->value.items.empty() &&
+                                              tree_.find("case")->value.kind == TomlValue::Kind::array)) {
+            top.refuse(top.place_of("case"), "the file has no [[case]]",
+                       "add one with a name, a [case.stimulus] and, unless there is a [[rule]], a [[case.rule]]");
+            return;
+        }
+        const bool has_rule = common.first || std::any_of(cases.begin(), cases.end(),
+                                                          [](const ReadCase& read) { return read.has_rules; });
+        if (!has_rule && tree_.find("rule") == nullptr) {
+            top.refuse(top.place(), "the file has no rule, so it judges nothing",
+                       "add a [[rule]] for every case, or a [[case.rule]] to one");
+        }
+    }
+
+    /// Joins what was read, and asks the judge which rules the stimuli cannot answer.
+    void admit(const Signal& signal, FilterChain& chain, const std::vector<Rule>& common,
+               std::vector<ReadCase>& cases) {
+        plan_.file = path_;
+        plan_.signal = signal;
+        plan_.filter = std::move(chain);
+        for (ReadCase& read : cases) {
+            if (!read.is_clean) continue;
+            add_common_rules(read.the_case, common);
+            plan_.cases.push_back(std::move(read.the_case));
+        }
+        settle_common_latency(plan_, common, problems_);
+        for (const Case& the_case : plan_.cases) {
+            for (const Refusal& refusal : refusals(plan_, the_case)) {
+                problems_.add(place_of(refusal.position), refusal.problem, refusal.remedy);
+            }
+        }
+    }
+
+    const TomlValue& tree_;
+    std::string path_;
+    PlanOptions options_;
+    Problems problems_;
+    ReadContext context_;
+    Plan plan_;
+};
+
+/// Of every shape that has a seed; the table of the shapes has the last word on its range.
+std::optional<std::string> seed_problem(std::uint64_t seed) {
+    for (const Recipe& recipe : stimulus_recipes()) {
+        const Parameter* parameter = find_parameter(recipe, "seed");
+        if (parameter != nullptr && !(static_cast<double>(seed) <= parameter->maximum)) {
+            return render_without_line("--seed", std::to_string(seed) + " is above " + shown_number(parameter->maximum),
+                                       "give a smaller seed");
+        }
+    }
+    return std::nullopt;
+}
+
+}  // namespace
+
+std::variant<Plan, ReadProblems> read_plan(const std::string& path, const Files& files, const PlanOptions& options) {
+    if (options.seed) {
+        if (auto problem = seed_problem(*options.seed)) return ReadProblems{{std::move(*problem)}};
+    }
+    auto document = open_document(path, files, "docs/plan.md");
+    if (auto* problems = std::get_if<ReadProblems>(&document)) return std::move(*problems);
+    return PlanFile(std::get<Document>(document), path, files, options).read();
+}
+
+}  // namespace halflsb

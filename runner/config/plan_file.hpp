@@ -1,0 +1,29 @@
+// Reads a plan: docs/plan.md is its reference. Strict: what is not known, or contradicts itself, is
+// refused, and everything that is wrong is said at once.
+#pragma once
+
+#include <cstdint>
+#include <optional>
+#include <string>
+#include <variant>
+
+#include "oracle/judge/plan.hpp"
+#include "runner/config/problems.hpp"
+#include "runner/world/files.hpp"
+
+namespace halflsb {
+
+struct PlanOptions {
+    /// Files that the plan names lie under it; "" is the plan's own folder.
+    std::string root;
+    /// Takes the place of the seed of every stimulus that has one (--seed).
+    std::optional<std::uint64_t> seed;
+};
+
+/// A plan comes with a pull request: it can name no command, no link, and no file outside the root.
+/// Costs up to one pass of the reference for each case with a written latency rule, which is refused
+/// where the case cannot tell (judge/admission.hpp).
+std::variant<Plan, ReadProblems> read_plan(const std::string& path, const Files& files,
+                                           const PlanOptions& options = {});
+
+}  // namespace halflsb

@@ -1,0 +1,272 @@
+// One value of a plan or a rig against its Parameter: type, finite, range, choice.
+#include <algorithm>
+#include <cmath>
+
+#include "runner/config/bands.hpp"
+#include "runner/config/nearest.hpp"
+#include "runner/config/number_file.hpp"
+#include "runner/config/reader.hpp"
+#include "runner/config/shown_number.hpp"
+#include "runner/world/printable.hpp"
+
+namespace halflsb {
+
+namespace {
+
+std::string found_text(const TomlValue& value) {
+    switch (value.kind) {
+        case TomlValue::Kind::text:
+            return "the string " + quoted(value.text);
+        case TomlValue::Kind::integer:
+            return "the whole number " + std::to_string(value.integer);
+        case TomlValue::Kind::real:
+            return "the number " + shown_number(value.real);
+        case TomlValue::Kind::boolean:
+            return value.boolean ? "true" : "false";
+        default:
+            return kind_text(value);
+    }
+}
+
+std::string wanted_text(ParameterType type) {
+    switch (type) {
+        case ParameterType::integer:
+            return "a whole number";
+        case ParameterType::real:
+            return "a number";
+        case ParameterType::text:
+        case ParameterType::choice:
+            return "a string";
+        case ParameterType::reals:
+            return "an array of numbers";
+        case ParameterType::sections:
+            return "an array of arrays of numbers";
+        case ParameterType::bands:
+            return "an array of tables";
+        case ParameterType::file:
+            return "the name of a file";
+    }
+    return {};
+}
+
+/// How the value would look right.
+std::string example(const Parameter& parameter) {
+    const std::string start = "write " + std::string(parameter.name) + " = ";
+    switch (parameter.type) {
+        case ParameterType::integer:
+            return start + "16, without a decimal point and without quotation marks";
+        case ParameterType::real:
+            return start + "0.5, without quotation marks";
+        case ParameterType::text:
+            return start + "\"...\"";
+        case ParameterType::choice:
+            return start + "\"" + std::string(parameter.choices.empty() ? "..." : parameter.choices.front()) + "\"";
+        case ParameterType::reals:
+            return start + "[0.25, 0.5, 0.25]";
+        case ParameterType::sections:
+            return start + "[[b0, b1, b2, a1, a2], ...], with numbers";
+        case ParameterType::bands:
+            return start + "[{ from_hz = 0.0, to_hz = 50.0, min_db = -1.0, max_db = 1.0 }, ...]";
+        case ParameterType::file:
+            return start + "\"taps.txt\", a path under the root";
+    }
+    return {};
+}
+
+void refuse_type(const Parameter& parameter, const TomlValue& value, std::string_view name, std::string_view wanted,
+                 ReadContext& context) {
+    context.problems.add(value.place,
+                         std::string(name) + " is " + found_text(value) + ", wanted " + std::string(wanted),
+                         example(parameter));
+}
+
+std::string range_remedy(const Parameter& parameter, std::string_view what) {
+    return "give " + std::string(what) + (range_text(parameter).empty() ? "" : " " + range_text(parameter));
+}
+
+/// A finite number within the range; `name` is what messages call it.
+std::optional<double> number_of(const Parameter& parameter, const TomlValue& value, const std::string& name,
+                                ReadContext& context) {
+    double number = 0.0;
+    if (value.kind == TomlValue::Kind::integer) {
+        number = static_cast<double>(value.integer);
+    } else if (value.kind == TomlValue::Kind::real) {
+        number = value.real;
+    } else {
+        refuse_type(parameter, value, name, parameter.type == ParameterType::integer ? "a whole number" : "a number",
+                    context);
+        return std::nullopt;
+    }
+    const std::string what = parameter.type == ParameterType::integer ? "a whole number" : "a number";
+    if (!std::isfinite(number)) {
+        const std::string word = std::isnan(number) ? "nan" : number > 0.0 ? "inf" : "-inf";
+        context.problems.add(value.place, name + " = " + word + " is no finite number", range_remedy(parameter, what));
+        return std::nullopt;
+    }
+    if (parameter.type == ParameterType::integer && value.kind != TomlValue::Kind::integer) {
+        refuse_type(parameter, value, name, "a whole number", context);
+        return std::nullopt;
+    }
+    // Of an integer the text as written: a double may not hold it.
+    const std::string shown =
+        value.kind == TomlValue::Kind::integer ? std::to_string(value.integer) : shown_number(number);
+    if (!(number >= parameter.minimum)) {
+        context.problems.add(value.place, name + " = " + shown + " is below " + shown_number(parameter.minimum),
+                             range_remedy(parameter, what));
+        return std::nullopt;
+    }
+    if (!(number <= parameter.maximum)) {
+        context.problems.add(value.place, name + " = " + shown + " is above " + shown_number(parameter.maximum),
+                             range_remedy(parameter, what));
+        return std::nullopt;
+    }
+    return number;
+}
+
+std::optional<std::string> text_of(const Parameter& parameter, const TomlValue& value, ReadContext& context) {
+    const std::string name(parameter.name);
+    if (value.kind != TomlValue::Kind::text) {
+        refuse_type(parameter, value, name, wanted_text(parameter.type), context);
+        return std::nullopt;
+    }
+    if (value.text.empty()) {
+        context.problems.add(value.place, name + " is empty", "give it at least one character");
+        return std::nullopt;
+    }
+    if (printable(value.text) != value.text) {
+        context.problems.add(value.place, name + " = " + quoted(value.text) + " holds a control character",
+                             "use characters that can be seen, in one line");
+        return std::nullopt;
+    }
+    const std::size_t length = columns_of(value.text);
+    if (!(static_cast<double>(length) <= parameter.maximum)) {
+        context.problems.add(value.place, name + " has " + std::to_string(length) + " characters",
+                             "give at most " + shown_number(parameter.maximum));
+        return std::nullopt;
+    }
+    return value.text;
+}
+
+std::optional<std::string> choice_of(const Parameter& parameter, const TomlValue& value, ReadContext& context) {
+    if (value.kind != TomlValue::Kind::text) {
+        refuse_type(parameter, value, parameter.name, "a string", context);
+        return std::nullopt;
+    }
+    if (std::find(parameter.choices.begin(), parameter.choices.end(), value.text) != parameter.choices.end())
+        return value.text;
+    const std::string_view nearest = nearest_word(value.text, parameter.choices);
+    std::vector<std::string> words;
+    for (const std::string_view choice : parameter.choices) words.push_back("\"" + std::string(choice) + "\"");
+    const std::vector<std::string_view> views(words.begin(), words.end());
+    context.problems.add(
+        value.place, std::string(parameter.name) + " = " + quoted(value.text) + " is not known",
+        nearest.empty() ? "give " + joined_words(views) : "did you mean \"" + std::string(nearest) + "\"?");
+    return std::nullopt;
+}
+
+std::optional<std::vector<double>> reals_of(const Parameter& parameter, const TomlValue& value, const std::string& name,
+                                            ReadContext& context) {
+    if (value.kind != TomlValue::Kind::array) {
+        refuse_type(parameter, value, name, "an array of numbers", context);
+        return std::nullopt;
+    }
+    if (value.items.empty()) {
+        context.problems.add(value.place, name + " is empty", "give it at least one number");
+        return std::nullopt;
+    }
+    std::vector<double> numbers;
+    for (const TomlValue& item : value.items) {
+        const auto number = number_of(parameter, item, name + "[" + std::to_string(numbers.size()) + "]", context);
+        if (!number) return std::nullopt;
+        numbers.push_back(*number);
+    }
+    return numbers;
+}
+
+std::optional<std::vector<std::vector<double>>> sections_of(const Parameter& parameter, const TomlValue& value,
+                                                            ReadContext& context) {
+    const std::string name(parameter.name);
+    if (value.kind != TomlValue::Kind::array) {
+        refuse_type(parameter, value, name, wanted_text(parameter.type), context);
+        return std::nullopt;
+    }
+    if (value.items.empty()) {
+        context.problems.add(value.place, name + " is empty", "give it at least one section");
+        return std::nullopt;
+    }
+    std::vector<std::vector<double>> rows;
+    for (const TomlValue& item : value.items) {
+        auto row = reals_of(parameter, item, name + "[" + std::to_string(rows.size()) + "]", context);
+        if (!row) return std::nullopt;
+        rows.push_back(std::move(*row));
+    }
+    return rows;
+}
+
+std::optional<std::vector<double>> file_numbers_of(const Parameter& parameter, const TomlValue& value,
+                                                   ReadContext& context) {
+    const auto path = text_of(parameter, value, context);
+    if (!path) return std::nullopt;
+    auto bytes = context.files.read_under_root(context.root, *path, largest_named_file_bytes);
+    if (!bytes) {
+        const std::string what =
+            std::string(parameter.name) + " = " + quoted(*path) + ": " + printable(bytes.error().problem);
+        context.problems.add(value.place, what, printable(bytes.error().remedy));
+        return std::nullopt;
+    }
+    const SourceText source(context.root + "/" + *path, std::move(*bytes));
+    auto numbers = read_number_file(source, parameter);
+    if (const auto* text = std::get_if<std::string>(&numbers)) {
+        context.problems.add_rendered(value.place, *text);
+        return std::nullopt;
+    }
+    return std::get<std::vector<double>>(std::move(numbers));
+}
+
+template <class T>
+std::optional<ParameterValue> as_value(std::optional<T> value) {
+    if (!value) return std::nullopt;
+    return ParameterValue(std::move(*value));
+}
+
+}  // namespace
+
+std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlEntry& entry, ReadContext& context) {
+    const TomlValue& value = entry.value;
+    switch (parameter.type) {
+        case ParameterType::integer:
+            if (!number_of(parameter, value, std::string(parameter.name), context)) return std::nullopt;
+            return value.integer;
+        case ParameterType::real:
+            return as_value(number_of(parameter, value, std::string(parameter.name), context));
+        case ParameterType::text:
+            return as_value(text_of(parameter, value, context));
+        case ParameterType::choice:
+            return as_value(choice_of(parameter, value, context));
+        case ParameterType::reals:
+            return as_value(reals_of(parameter, value, std::string(parameter.name), context));
+        case ParameterType::sections:
+            return as_value(sections_of(parameter, value, context));
+        case ParameterType::file:
+            return as_value(file_numbers_of(parameter, value, context));
+        case ParameterType::bands:
+            if (value.kind != TomlValue::Kind::array) {
+                refuse_type(parameter, value, parameter.name, wanted_text(parameter.type), context);
+                return std::nullopt;
+            }
+            return as_value(read_bands(value, context));
+    }
+    return std::nullopt;
+}
+
+std::string range_text(const Parameter& parameter) {
+    const bool below = std::isfinite(parameter.minimum), above = std::isfinite(parameter.maximum);
+    const std::string unit = parameter.unit.empty() ? "" : " " + std::string(parameter.unit);
+    if (below && above)
+        return "from " + shown_number(parameter.minimum) + " to " + shown_number(parameter.maximum) + unit;
+    if (below) return "of at least " + shown_number(parameter.minimum) + unit;
+    if (above) return "of at most " + shown_number(parameter.maximum) + unit;
+    return {};
+}
+
+}  // namespace halflsb

@@ -1,0 +1,76 @@
+// Typed, strict access to a table of a plan or a rig. What may stand in a table is said by a Recipe; a key
+// that nobody asked for, a missing one, a wrong type, NaN and a number out of range are gathered as
+// Problems with their places, and reading goes on.
+#pragma once
+
+#include <optional>
+#include <string>
+#include <string_view>
+#include <vector>
+
+#include "runner/config/problems.hpp"
+#include "runner/config/toml_tree.hpp"
+#include "runner/world/files.hpp"
+#include "stimuli/parameter.hpp"
+
+namespace halflsb {
+
+/// What reading may need beside the tree.
+struct ReadContext {
+    Problems& problems;
+    const Files& files;
+    std::string root;                  ///< of files that the text names
+    std::optional<double> nyquist_hz;  ///< for bands, once the sample rate is known
+};
+
+class TableReader {
+public:
+    /// `title` is how people write it: "[signal]", "[[case.rule]]"; "" for the top level. `outer` is the
+    /// table around it; both must outlive this.
+    TableReader(ReadContext& context, const TomlValue& table, std::string title, const TableReader* outer = nullptr);
+
+    /// Every parameter of the recipe: those given come back, in the types that ParameterValues states.
+    ParameterValues parameters(const Recipe& recipe);
+    /// The recipe that the string under `key` names; reports and gives nullptr when there is none.
+    const Recipe* chosen_recipe(std::string_view key, const std::vector<Recipe>& recipes);
+    /// The table under `key`; nullptr when absent or reported. `required` reports an absent one.
+    const TomlValue* table(std::string_view key, bool required);
+    /// The tables of the list under `key`, written [[key]]; empty when absent or reported.
+    std::vector<const TomlValue*> tables(std::string_view key);
+    /// Any value, for what no Parameter can say; nullptr when absent.
+    const TomlEntry* entry(std::string_view key);
+    /// After everything was asked for: what else stands there is unknown.
+    void refuse_unknown_keys();
+
+    /// The error of a maker (make_stimulus, make_stage, make_rule), at the parameter that it blames.
+    void refuse(const Error& error);
+    void refuse(Place place, std::string_view problem, std::string_view remedy);
+
+    /// Nothing was reported since this reader was made, its inner tables included.
+    bool is_clean() const { return context_.problems.count() == problems_before_; }
+    /// Of the value under `key`; of the table itself when it is not there.
+    Place place_of(std::string_view key) const;
+    Place place() const { return table_.place; }
+    const std::string& title() const { return title_; }
+
+private:
+    bool knows(std::string_view key) const;
+    std::string where() const;
+    /// "case.rule" for the key rule in [[case]].
+    std::string header_of(std::string_view key) const;
+
+    ReadContext& context_;
+    const TomlValue& table_;
+    std::string title_, addition_;
+    const TableReader* outer_;
+    std::size_t problems_before_;
+    std::vector<std::string_view> known_;
+};
+
+/// One value as its Parameter wants it, or nullopt after a report.
+std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlEntry& entry, ReadContext& context);
+
+/// "from 1 to 65536 samples", "of at least 0 Hz", ""
+std::string range_text(const Parameter& parameter);
+
+}  // namespace halflsb
