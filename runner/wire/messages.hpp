@@ -43,8 +43,8 @@ constexpr bool is_for_the_board(std::uint8_t type) { return type < 0x80; }
 constexpr std::uint8_t protocol_version = 1;
 constexpr std::size_t largest_text_bytes = 24, largest_build_id_bytes = 32, largest_echo_bytes = 32;
 constexpr std::size_t largest_load_values = 8;
-/// Of a message outside the stream: no page needs more.
-constexpr std::size_t largest_page_content_bytes = 72;
+/// Content of the largest message outside the stream: page 0 of a greeting with everything full.
+constexpr std::size_t largest_page_content_bytes = 80;
 
 struct Hello {
     std::uint32_t nonce = 0;

@@ -8,7 +8,7 @@ namespace halflsb {
 namespace {
 
 /// Questions and answers outside the stream, as frames.
-constexpr std::size_t largest_question_bytes = largest_frame_bytes(message::largest_page_content_bytes);
+constexpr std::size_t largest_question_bytes = largest_frame_bytes(message::largest_page_content_bytes - content_overhead_bytes);
 
 }  // namespace
 
@@ -117,7 +117,7 @@ Outcome<void> FramedSession::start(std::size_t filter_number) {
     const int asked = std::clamp(limits_.block_samples, 1, greeting_->max_block_samples);
     block_samples_ = asked;
     decoder_ =
-        FrameDecoder(std::max(frame_bytes_to_host(), message::largest_page_content_bytes + content_overhead_bytes));
+        FrameDecoder(std::max(frame_bytes_to_host(), message::largest_page_content_bytes));
 
     Question question{message::Type::start, message::Type::started, next_nonce(), {}, "the answer to START"};
     message::encode(
