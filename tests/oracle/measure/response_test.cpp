@@ -100,8 +100,11 @@ TEST_CASE("response: a right filter with rounded output is within 1e-5 of the tr
             if (point.cycles_per_sample < from || point.cycles_per_sample > to) continue;
             const Complex ideal = response(section, point.cycles_per_sample);
             // A lone tone of 0.9 whose output stays under half an LSB rounds to silence: there the board's true
-            // response is 0, and the estimate must say so.
-            const bool silent = x_is_chirp && 0.9 * std::abs(ideal) < 0.5 / 32768.0;
+            // response is 0, and the estimate must say so. Between that and some LSB a rounder's gain for a
+            // lone tone is anything from 0 to 1.27, and there is no truth to compare with.
+            const double output_lsb = 0.9 * std::abs(ideal) * 32768.0;
+            const bool silent = x_is_chirp && output_lsb < 0.45;
+            if (x_is_chirp && !silent && output_lsb < 4.0) continue;
             keep_larger(worst, silent ? std::abs(ideal + point.difference) : std::abs(point.difference));
         }
         CHECK(worst < 1e-5);
