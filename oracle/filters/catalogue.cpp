@@ -29,6 +29,12 @@ std::string text_of(double number) {
     return std::string(text.data(), end);
 }
 
+std::string text_of_radius(double radius) {
+    std::array<char, 32> text{};
+    const auto end = std::to_chars(text.data(), text.data() + text.size(), radius, std::chars_format::general, 9).ptr;
+    return std::string(text.data(), end);
+}
+
 std::string text_of(std::size_t number) { return std::to_string(number); }
 
 Error refuse(std::string_view place, std::string problem, std::string remedy) {
@@ -102,7 +108,8 @@ std::optional<std::string> complaint_about_sections(const FilterStage& stage) {
         const BiquadSection& s = sections[i];
         const std::string which = "section " + text_of(i + 1);
         if (!is_stable(s)) {
-            return which + " is unstable: " + quoted(s, "a") + " put a pole at radius " + text_of(pole_radius(s));
+            return which + " is unstable: " + quoted(s, "a") + " put a pole at radius " +
+                   text_of_radius(pole_radius(s));
         }
         if (s.b0 == 0.0 && s.b1 == 0.0 && s.b2 == 0.0) return which + " passes nothing: " + quoted(s, "b");
     }

@@ -1,0 +1,105 @@
+#include "oracle/arithmetic/declared.hpp"
+
+#include <limits>
+
+#include "oracle/filters/coefficients.hpp"
+#include "tests/oracle/support.hpp"
+
+using namespace halflsb;
+using namespace halflsb::testing;
+
+TEST_CASE("declared: coefficients round half away from zero to multiples of 2^-bits", "[arithmetic]") {
+    // Ties of 3 fraction bits are odd multiples of 1/16.
+    CHECK(rounded_coefficient(1.0 / 16, 3) == 0.125);
+    CHECK(rounded_coefficient(-1.0 / 16, 3) == -0.125);
+    CHECK(rounded_coefficient(3.0 / 16, 3) == 0.25);
+    CHECK(rounded_coefficient(-3.0 / 16, 3) == -0.25);
+    CHECK(rounded_coefficient(std::nextafter(1.0 / 16, 0.0), 3) == 0.0);
+    CHECK(rounded_coefficient(-std::nextafter(1.0 / 16, 0.0), 3) == 0.0);
+    CHECK(rounded_coefficient(std::nextafter(1.0 / 16, 1.0), 3) == 0.125);
+    CHECK(rounded_coefficient(0.5, 0) == 1.0);
+    CHECK(rounded_coefficient(-2.5, 0) == -3.0);
+    CHECK(rounded_coefficient(0.4999999999999999, 0) == 0.0);  // add-half-and-floor would give 1
+    CHECK(rounded_coefficient(0.1, 15) == 3277.0 / 32768.0);
+    CHECK(rounded_coefficient(-0.1, 31) == -214748365.0 / 2147483648.0);
+}
+
+TEST_CASE("declared: a coefficient that already is a multiple stays as it is", "[arithmetic]") {
+    CHECK(rounded_coefficient(0.1, 62) == 0.1);  // 2^-56 is the last bit of 0.1
+    CHECK(rounded_coefficient(1e9, 62) == 1e9);
+    CHECK(rounded_coefficient(123456789.0, 0) == 123456789.0);
+    CHECK(rounded_coefficient(0x1.8p-62, 62) == 0x1p-61);  // 1.5 steps
+    CHECK(rounded_coefficient(0x1p-64, 62) == 0.0);
+}
+
+TEST_CASE("declared: each stage by its own bits, a moving average never", "[arithmetic]") {
+    const FilterChain design{stage(Fir{{0.3, -0.3}}, 2), stage(Fir{{0.3}}), stage(MovingAverage{5}, 1),
+                             stage(BiquadCascade{{{0.3, 0.6, 0.3, -0.9, 0.4}}}, 3)};
+    const FilterChain declared = declared_chain(design);
+    REQUIRE(declared.size() == 4);
+    CHECK(std::get<Fir>(declared[0].design).taps == std::vector<double>{0.25, -0.25});
+    CHECK(std::get<Fir>(declared[1].design).taps == std::vector<double>{0.3});
+    CHECK(std::get<MovingAverage>(declared[2].design).points == 5);
+    const BiquadSection& s = std::get<BiquadCascade>(declared[3].design).sections[0];
+    CHECK((s.b0 == 0.25 && s.b1 == 0.625 && s.b2 == 0.25 && s.a1 == -0.875 && s.a2 == 0.375));
+    CHECK(declared[0].coefficient_fraction_bits == 2);
+    CHECK(std::get<Fir>(design[0].design).taps[0] == 0.3);  // the design itself is untouched
+}
+
+TEST_CASE("declared: the output saturates at both rails and nowhere before", "[arithmetic]") {
+    const auto q15 = *sample_format("q15");
+    const auto filter = make_declared_filter({}, q15, 1.0);
+    const double lsb = 0x1p-15, top = 1.0 - lsb;
+    const std::vector<double> in{
+        -1.0, -1.0 + lsb / 4, std::nextafter(-1.0, -2.0), -7.0, top, top - lsb / 4, std::nextafter(top, 2.0), 1.0, 7.0,
+        0.3};
+    const std::vector<double> expected{-1.0, -1.0 + lsb / 4, -1.0, -1.0, top, top - lsb / 4, top, top, top, 0.3};
+    CHECK(run(*filter, in) == expected);
+}
+
+TEST_CASE("declared: integer formats clamp at their codes, f32 only at the largest float", "[arithmetic]") {
+    const auto i16 = make_declared_filter({}, *sample_format("i16"), 1.0);
+    CHECK(run(*i16, std::vector<double>{-40000, -32768, 32767, 32767.4, 40000}) ==
+          std::vector<double>{-32768, -32768, 32767, 32767, 32767});
+    const auto f32 = make_declared_filter({}, *sample_format("f32"), 1.0);
+    const double most = static_cast<double>(std::numeric_limits<float>::max());
+    CHECK(run(*f32, std::vector<double>{-1e300, -5.0, 5.0, 1e300}) == std::vector<double>{-most, -5.0, 5.0, most});
+}
+
+TEST_CASE("declared: the gain comes before the rails", "[arithmetic]") {
+    const auto filter = make_declared_filter({}, *sample_format("i16"), 32768.0);
+    CHECK(run(*filter, std::vector<double>{-1.0, 0.25, 1.0}) == std::vector<double>{-32768.0, 8192.0, 32767.0});
+}
+
+TEST_CASE("declared: saturation is of the output only, the state runs on", "[arithmetic]") {
+    // Gain 4 with feedback: the clipped output must not enter the recursion.
+    const FilterChain chain{stage(BiquadCascade{{{1.0, 0.0, 0.0, -0.75, 0.0}}})};
+    const auto filter = make_declared_filter(chain, *sample_format("q15"), 1.0);
+    std::vector<double> in(40, 0.0);
+    for (std::size_t n = 0; n < 10; ++n) in[n] = 0.9;
+    const auto clipped = run(*filter, in), ideal = run(chain, in);
+    for (std::size_t n = 0; n < in.size(); ++n) REQUIRE(clipped[n] == std::min(ideal[n], 1.0 - 0x1p-15));
+}
+
+TEST_CASE("declared: NaN passes the rails", "[arithmetic]") {
+    const auto filter = make_declared_filter({}, *sample_format("q15"), 1.0);
+    CHECK(std::isnan(run(*filter, std::vector<double>{std::numeric_limits<double>::quiet_NaN()})[0]));
+}
+
+TEST_CASE("declared: reset, splits and in-place runs as every filter", "[arithmetic]") {
+    const FilterChain chain{stage(Fir{noise(30, 61)}, 4), stage(MovingAverage{7}),
+                            stage(BiquadCascade{{cookbook(Shape::low_pass, 0.1, 2.0)}}, 12)};
+    const auto in = noise(3001, 62);
+    const auto filter = make_declared_filter(chain, *sample_format("q15"), 0.5);
+    const auto whole = run(*filter, in);
+    for (const Split split : every_split) {
+        filter->reset();
+        auto both = in;
+        for_blocks(split, in.size(), [&](std::size_t first, std::size_t count) {
+            const auto block = std::span(both).subspan(first, count);
+            filter->process(block, block);
+        });
+        CHECK(same_bits(both, whole));
+    }
+    CHECK_FALSE(same_bits(whole, run(chain, in)));
+}
