@@ -20,26 +20,29 @@ std::optional<Rounding> rounding_from(std::string_view name) {
 }
 
 double round_to_whole(double value, Rounding rounding) {
-    // floor and the fraction are exact, so a tie is recognised without adding 1/2, which would itself
-    // round (0.49999999999999994 + 0.5 is 1.0). A NaN compares false everywhere and falls through.
-    const double below = std::floor(value);
-    const double fraction = value - below;
+    if (rounding == Rounding::floor) return std::floor(value);
+    // Split by size: whole and fraction are then exact, while value - floor(value) is not just below 0,
+    // and value + 1/2 is not just below 1/2. A NaN or infinity compares false and falls through.
+    const double size = std::abs(value);
+    const double whole = std::floor(size);
+    const double fraction = size - whole;
+    bool away = fraction > 0.5;
     switch (rounding) {
         case Rounding::floor:
-            return below;
         case Rounding::toward_zero:
-            return value < 0.0 && fraction > 0.0 ? below + 1.0 : below;
+            away = false;
+            break;
         case Rounding::half_up:
-            return fraction >= 0.5 ? below + 1.0 : below;
+            away = away || (fraction == 0.5 && value > 0.0);
+            break;
         case Rounding::half_away:
-            return fraction > 0.5 || (fraction == 0.5 && value > 0.0) ? below + 1.0 : below;
-        case Rounding::half_even: {
-            if (fraction != 0.5) return fraction > 0.5 ? below + 1.0 : below;
-            const double half = below * 0.5;
-            return std::floor(half) == half ? below : below + 1.0;
-        }
+            away = away || fraction == 0.5;
+            break;
+        case Rounding::half_even:
+            away = away || (fraction == 0.5 && std::floor(whole * 0.5) != whole * 0.5);
+            break;
     }
-    return below;
+    return std::copysign(away ? whole + 1.0 : whole, value);
 }
 
 }  // namespace halflsb

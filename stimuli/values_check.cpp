@@ -129,7 +129,10 @@ std::optional<Error> misfit_of(const Recipe& recipe, const ParameterValues& valu
 
 std::string number_text(double value) {
     std::array<char, 32> text{};
-    const auto end = std::to_chars(text.data(), text.data() + text.size(), value).ptr;
+    // A whole number is written out: 10000000000, not 1e+10.
+    const bool whole = std::abs(value) < 0x1p53 && std::floor(value) == value;
+    const auto end = whole ? std::to_chars(text.data(), text.data() + text.size(), value, std::chars_format::fixed).ptr
+                           : std::to_chars(text.data(), text.data() + text.size(), value).ptr;
     return std::string(text.data(), end);
 }
 

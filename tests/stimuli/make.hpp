@@ -1,0 +1,55 @@
+// Short ways to make a stimulus and to read it.
+#pragma once
+
+#include <catch2/catch.hpp>
+#include <initializer_list>
+#include <memory>
+#include <string>
+#include <utility>
+#include <vector>
+
+#include "stimuli/stimulus.hpp"
+
+namespace halflsb {
+
+using Given = std::initializer_list<std::pair<const char*, ParameterValue>>;
+
+inline SampleFormat format_named(std::string_view name) { return *sample_format(name); }
+
+inline Outcome<std::unique_ptr<const Stimulus>> try_make(std::string_view shape, Given given, double rate_hz = 48000.0,
+                                                         std::string_view format = "q15") {
+    ParameterValues values;
+    for (const auto& [name, value] : given) values.set(name, value);
+    return make_stimulus(shape, values, {rate_hz, format_named(format)});
+}
+
+inline std::unique_ptr<const Stimulus> made(std::string_view shape, Given given, double rate_hz = 48000.0,
+                                            std::string_view format = "q15") {
+    auto outcome = try_make(shape, given, rate_hz, format);
+    if (!outcome) FAIL(to_text(outcome.error()));
+    return std::move(outcome).value();
+}
+
+/// The whole text of a refusal, or "accepted".
+inline std::string refusal(std::string_view shape, Given given, double rate_hz = 48000.0,
+                           std::string_view format = "q15") {
+    const auto outcome = try_make(shape, given, rate_hz, format);
+    if (outcome) return "accepted";
+    CHECK(outcome.error().kind == ErrorKind::input);
+    return to_text(outcome.error());
+}
+
+inline std::vector<double> ratios_of(const Stimulus& stimulus, std::int64_t first_index, std::size_t count) {
+    std::vector<double> ratios(count, 99.0);
+    stimulus.fill(first_index, ratios);
+    return ratios;
+}
+
+inline std::vector<Code> codes_of(const Stimulus& stimulus, std::string_view format, std::int64_t first_index,
+                                  std::size_t count, Rounding rounding = Rounding::half_up) {
+    std::vector<Code> codes(count, 99);
+    fill_codes(stimulus, format_named(format), rounding, first_index, codes);
+    return codes;
+}
+
+}  // namespace halflsb

@@ -1,0 +1,115 @@
+#include "stimuli/values_check.hpp"
+
+#include <catch2/catch.hpp>
+#include <limits>
+
+#include "stimuli/stimulus.hpp"
+
+using namespace halflsb;
+
+namespace {
+
+const Recipe recipe = {
+    .name = "thing",
+    .help = "A recipe with one parameter of each type.",
+    .parameters =
+        {
+            {.name = "taps", .type = ParameterType::file, .unit = "", .minimum = -2.0, .maximum = 2.0, .help = "h"},
+            {.name = "label", .type = ParameterType::text, .help = "h"},
+            {.name = "rows", .type = ParameterType::sections, .help = "h"},
+            {.name = "kind", .type = ParameterType::choice, .choices = {"first", "second"}, .help = "h"},
+            {.name = "count", .type = ParameterType::integer, .default_value = 3.0, .help = "h"},
+            {.name = "must", .type = ParameterType::real, .required = true, .help = "h"},
+        },
+};
+
+std::string checked(std::string name, ParameterValue value) {
+    ParameterValues values;
+    values.set("must", 1.0);
+    values.set(std::move(name), std::move(value));
+    const auto error = misfit_of(recipe, values);
+    return error ? to_text(*error) : "fits";
+}
+
+using Numbers = std::vector<double>;
+using Rows = std::vector<std::vector<double>>;
+
+}  // namespace
+
+TEST_CASE("values check: each type takes its own values only", "[stimuli]") {
+    CHECK(checked("taps", Numbers{1.0, -2.0}) == "fits");
+    CHECK(checked("taps", Numbers{1.0, 2.5}) == "taps: 2.5 is above the largest, 2\n  Give 2 or less.");
+    CHECK(checked("taps", Rows{{1.0}}) == "taps: needs an array of numbers");
+    CHECK(checked("label", std::string("any")) == "fits");
+    CHECK(checked("label", 1.0) == "label: needs a string");
+    CHECK(checked("rows", Rows{{1.0}, {2.0, 3.0}}) == "fits");
+    CHECK(checked("rows", Rows{}) == "rows: the array is empty\n  Give at least one row.");
+    CHECK(checked("rows", Rows{{1.0}, {}}) == "rows: the array is empty\n  Give at least one number.");
+    CHECK(checked("rows", Numbers{1.0}) == "rows: needs an array of arrays of numbers");
+    CHECK(checked("rows", Rows{{std::numeric_limits<double>::infinity()}}) ==
+          "rows: inf is not finite\n  Give a number.");
+    CHECK(checked("kind", std::string("second")) == "fits");
+    CHECK(checked("kind", std::string("third")) == "kind: \"third\" is not a choice\n  Choices: first, second.");
+    CHECK(checked("count", std::int64_t{7}) == "fits");
+    CHECK(checked("count", 7.0) == "count: needs a whole number");
+    CHECK(checked("must", std::int64_t{7}) == "fits");
+    CHECK(misfit_of(recipe, {})->place == "must");
+}
+
+TEST_CASE("parameter values: the plan's value, else the default, else nothing", "[stimuli]") {
+    ParameterValues values;
+    CHECK(values.integer(recipe, "count") == 3);
+    CHECK(values.number(recipe, "count") == 3.0);
+    CHECK(values.text(recipe, "kind") == "first");
+    CHECK_FALSE(values.number(recipe, "must"));
+    CHECK_FALSE(values.text(recipe, "label"));
+    CHECK(values.numbers("taps").empty());
+    CHECK(values.rows("rows").empty());
+    CHECK_FALSE(values.has("count"));
+    values.set("count", std::int64_t{5});
+    values.set("kind", std::string("second"));
+    values.set("taps", Numbers{1.0});
+    values.set("rows", Rows{{1.0}});
+    CHECK(values.has("count"));
+    CHECK(values.integer(recipe, "count") == 5);
+    CHECK(values.number(recipe, "count") == 5.0);
+    CHECK(values.text(recipe, "kind") == "second");
+    CHECK(values.numbers("taps") == Numbers{1.0});
+    CHECK(values.rows("rows") == Rows{{1.0}});
+    CHECK_FALSE(values.text(recipe, "count"));
+    CHECK(values.numbers("count").empty());
+    CHECK(values.all().size() == 4);
+    CHECK(find_parameter(recipe, "nothing") == nullptr);
+}
+
+TEST_CASE("catalogue: every shape and parameter explains itself in one sentence", "[stimuli]") {
+    std::vector<std::string_view> names;
+    for (const Recipe& shape : stimulus_recipes()) {
+        names.push_back(shape.name);
+        CHECK(shape.help.back() == '.');
+        CHECK(find_recipe(stimulus_recipes(), shape.name) == &shape);
+        for (const Parameter& parameter : shape.parameters) {
+            INFO(shape.name << " " << parameter.name);
+            CHECK(parameter.help.size() > 10);
+            CHECK(parameter.help.back() == '.');
+            CHECK(parameter.minimum <= parameter.maximum);
+            CHECK(find_parameter(shape, parameter.name) == &parameter);  // so no name stands twice
+            if (parameter.default_value) {
+                CHECK_FALSE(parameter.required);
+                CHECK(*parameter.default_value >= parameter.minimum);
+                CHECK(*parameter.default_value <= parameter.maximum);
+            }
+            CHECK(parameter.choices.empty() == (parameter.type != ParameterType::choice));
+        }
+    }
+    CHECK(names == std::vector<std::string_view>{"step", "impulse", "chirp", "noise", "sine", "multitone"});
+    CHECK(find_recipe(stimulus_recipes(), "nothing") == nullptr);
+}
+
+TEST_CASE("number text: the shortest that reads back", "[stimuli]") {
+    CHECK(number_text(0.1) == "0.1");
+    CHECK(number_text(48000.0) == "48000");
+    CHECK(number_text(10'000'000'000.0) == "10000000000");
+    CHECK(number_text(1.0 / 3.0) == "0.3333333333333333");
+    CHECK(number_text(-1e-300) == "-1e-300");
+}
