@@ -1,0 +1,34 @@
+// What the program's exit status says: computed here and nowhere else, from what the run came to.
+// docs/exit-status.md is made from the table.
+#pragma once
+
+#include <string>
+#include <string_view>
+#include <vector>
+
+#include "runner/world/result.hpp"
+
+namespace halflsb {
+
+struct ExitStatus {
+    int number = 0;
+    std::string_view meaning;
+    std::vector<std::string_view> causes;  ///< concrete ones, a sentence's part each
+    std::string_view advice;
+};
+
+/// Every status, ascending.
+const std::vector<ExitStatus>& exit_statuses();
+
+/// Of a run, finished or not. In this order: 130 when it was interrupted, 73, 70, 65 or 64 when an
+/// error of that kind ended it; then 1 outranks 3 outranks 2 outranks 0. Cases that did not run though
+/// nothing ended the run are our own defect: never a pass.
+int exit_status_of(const RunResult& run);
+
+/// Of an error that came before or instead of a run.
+int exit_status_of(const Error& error);
+
+/// The table of docs/exit-status.md, in Markdown.
+std::string exit_status_reference();
+
+}  // namespace halflsb
