@@ -33,37 +33,40 @@ enum halflsb_format { HALFLSB_Q15 = 1, HALFLSB_Q31 = 2, HALFLSB_I16 = 3, HALFLSB
 /* A filter of the firmware. `process` takes `count` instants from `in` and writes as many to `out`;
  * words are in the machine's own order, in and out never overlap harmfully (out may equal in). */
 struct halflsb_filter {
-    const char *name; /* to 24 bytes */
+    const char* name; /* to 24 bytes */
     uint8_t injection, input, output, channels_in, channels_out, tables;
     void (*reset)(void);
-    void (*process)(const void *in, void *out, uint16_t count);
+    void (*process)(const void* in, void* out, uint16_t count);
     /* writes `count` values at `offset` of a table; 0 when out of range. NULL when tables is 0. */
-    int (*load)(uint8_t table, uint16_t offset, const int32_t *values, uint8_t count);
+    int (*load)(uint8_t table, uint16_t offset, const int32_t* values, uint8_t count);
 };
 
 struct halflsb_setting {
-    const char *name; /* to 24 bytes */
+    const char* name; /* to 24 bytes */
     int32_t minimum, maximum;
-    int32_t *value;
+    int32_t* value;
     void (*changed)(void); /* may be NULL */
 };
 
 struct halflsb_board {
-    const uint8_t *build_id; /* NULL when the image has none */
+    const uint8_t* build_id; /* NULL when the image has none */
     uint8_t build_id_bytes;
-    const char *serial; /* to 24 bytes, "" when there is none */
-    const struct halflsb_filter *filters;
+    const char* serial; /* to 24 bytes, "" when there is none */
+    const struct halflsb_filter* filters;
     uint8_t filter_count;
-    const struct halflsb_setting *settings;
+    const struct halflsb_setting* settings;
     uint8_t setting_count;
     uint32_t tick_hz;
     uint8_t tick_bits; /* 0: there is no counter */
     uint32_t (*ticks)(void);
     /* sends all bytes, waiting as long as the line needs */
-    void (*write)(const uint8_t *bytes, size_t count);
+    void (*write)(const uint8_t* bytes, size_t count);
+    /* Less than what was compiled in, for a board that wants to show a smaller one; 0: as compiled. */
+    uint16_t block_samples;
+    uint8_t credit_blocks;
 };
 
-void halflsb_start(const struct halflsb_board *board);
+void halflsb_start(const struct halflsb_board* board);
 /* From the receive interrupt, once a byte. */
 void halflsb_receive_byte(uint8_t byte);
 /* From the receive interrupt when the hardware reports an overrun. */
