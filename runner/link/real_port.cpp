@@ -54,11 +54,13 @@ void ask_for_low_latency(int fd) {
 
 Outcome<void> configure_real_port(const std::string& port, const std::string& device, int fd, long baud) {
     sp_port* raw = nullptr;
-    if (sp_get_port_by_name(device.c_str(), &raw) != SP_OK)
-        return Error{ErrorKind::bench, port, "this terminal is not a serial port (" + last_text() + ")",
+    const auto not_a_port = [&port] {
+        return Error{ErrorKind::bench, port, "this terminal is not a serial port: " + last_text(),
                      "`halflsb ports` lists the serial ports"};
+    };
+    if (sp_get_port_by_name(device.c_str(), &raw) != SP_OK) return not_a_port();
     const std::unique_ptr<sp_port, FreePort> freed(raw);
-    if (sp_open(raw, SP_MODE_READ_WRITE) != SP_OK) return refused(port, "to be opened as a serial port");
+    if (sp_open(raw, SP_MODE_READ_WRITE) != SP_OK) return not_a_port();
     const std::unique_ptr<sp_port, ClosePort> closed(raw);
     if (sp_set_bits(raw, 8) != SP_OK || sp_set_parity(raw, SP_PARITY_NONE) != SP_OK || sp_set_stopbits(raw, 1) != SP_OK)
         return refused(port, "8 data bits, no parity, 1 stop bit");

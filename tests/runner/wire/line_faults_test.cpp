@@ -161,3 +161,47 @@ TEST_CASE("line faults: the link goes at any exchange", "[wire]") {
         CHECK(bench.session().room_samples() == 0);
     }
 }
+
+TEST_CASE("line faults: a loss in the middle is noticed at once, and frames go out again once", "[wire]") {
+    for (const bool to_board : {true, false}) {
+        CAPTURE(to_board);
+        Bench bench;
+        bench.limits.block_samples = 64;
+        bench.board.credit_blocks = 16;
+        REQUIRE(bench.open(1));
+        FakeLine& line = to_board ? bench.link.to_board : bench.link.to_host;
+        line.set_fault({LineFault::flip, false, line.transfers() + 1});
+        const Duration before = bench.clock.elapsed();
+        const Streamed streamed = stream(bench.session(), 10'000, bench.clock);
+        REQUIRE_FALSE(streamed.error);
+        CHECK(streamed.samples == summed(10'000));
+        // EXPECT, or an answer that is skipped: no waiting for the resend time.
+        CHECK(bench.clock.elapsed() - before < bench.limits.resend / 2);
+        const WireFigures figures = bench.session().figures();
+        CHECK(figures.resends == 1);
+        CHECK(figures.frames_bad == (to_board ? 0 : 1));
+        // At most a full window more than without the loss.
+        CHECK(figures.bytes_sent <= bench.session().bytes_to_board(10'000 + 16 * 64));
+    }
+}
+
+TEST_CASE("line faults: a loss at the end is noticed by time", "[wire]") {
+    for (const bool to_board : {true, false}) {
+        CAPTURE(to_board);
+        Bench bench;
+        bench.link.set_baud(115200);
+        bench.board.credit_blocks = 64;
+        REQUIRE(bench.open(1));
+        FakeLine& line = to_board ? bench.link.to_board : bench.link.to_host;
+        line.set_fault({LineFault::lose, false, line.transfers() + 1});
+        bench.session().send(std::vector<Code>{1, 2, 3});
+        const Instant begin = bench.clock.now();
+        const Outcome<Received> received = bench.session().advance(begin + seconds(10.0));
+        REQUIRE(received);
+        CHECK(received->samples == std::vector<Code>{1, 3, 6});
+        CHECK(bench.clock.now() - begin >= bench.limits.resend);
+        CHECK(bench.clock.now() - begin < bench.limits.answer);
+        CHECK(bench.session().figures().resends == 1);
+        CHECK(bench.board.processed_samples == 3);
+    }
+}
