@@ -1,4 +1,4 @@
-#include "build_id.h"
+#include "rigs/cortex-m4/build_id.h"
 
 #include <stddef.h>
 
@@ -12,8 +12,8 @@ enum { nt_gnu_build_id = 3, longest = 32 };
 
 extern const struct note build_id_note; /* from the linker script */
 
-const uint8_t *build_id(uint8_t *bytes) {
-    const struct note *note = &build_id_note;
+const uint8_t* build_id(uint8_t* bytes) {
+    const struct note* note = &build_id_note;
     const int valid =
         note->name_bytes == sizeof note->name && note->type == nt_gnu_build_id && note->description_bytes <= longest;
     *bytes = valid ? (uint8_t)note->description_bytes : 0;

@@ -5,6 +5,6 @@
 #include <stdint.h>
 
 /* NULL and 0 when the note is missing or not one. */
-const uint8_t *build_id(uint8_t *bytes);
+const uint8_t* build_id(uint8_t* bytes);
 
 #endif

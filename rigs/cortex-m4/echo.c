@@ -1,8 +1,8 @@
 /* Returns every byte as it came: what the line itself can carry, to measure everything else against. */
 #include <stdint.h>
 
-#include "startup.h"
-#include "uart.h"
+#include "rigs/cortex-m4/startup.h"
+#include "rigs/cortex-m4/uart.h"
 
 enum { ring_bytes = 16384 }; /* more than a pseudo-terminal holds, so that nothing is lost while we transmit */
 static uint8_t ring[ring_bytes];

@@ -5,7 +5,7 @@
 
 #include <stdint.h>
 
-#define REGISTER(address) (*(volatile uint32_t *)(uintptr_t)(address))
+#define REGISTER(address) (*(volatile uint32_t*)(uintptr_t)(address))
 
 /* Reset and clock control: after a reset the processor and all buses run from the 16 MHz internal oscillator. */
 #define RCC_AHB1ENR REGISTER(0x40023830u)

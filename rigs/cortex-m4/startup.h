@@ -4,6 +4,6 @@
 #include <stdint.h>
 
 /* Sleeps until an interrupt, unless `counter`, which an interrupt advances, already differs from `seen`. */
-void wait_for_interrupt_if_unchanged(const volatile uint32_t *counter, uint32_t seen);
+void wait_for_interrupt_if_unchanged(const volatile uint32_t* counter, uint32_t seen);
 
 #endif

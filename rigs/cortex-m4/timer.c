@@ -1,6 +1,6 @@
-#include "timer.h"
+#include "rigs/cortex-m4/timer.h"
 
-#include "registers.h"
+#include "rigs/cortex-m4/registers.h"
 
 void timer_start(void) {
     RCC_APB1ENR |= RCC_APB1ENR_TIM2;

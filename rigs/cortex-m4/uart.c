@@ -1,11 +1,11 @@
-#include "uart.h"
+#include "rigs/cortex-m4/uart.h"
 
-#include "registers.h"
+#include "rigs/cortex-m4/registers.h"
 
-static const struct uart_receiver *receiver_;
+static const struct uart_receiver* receiver_;
 volatile uint32_t uart_bytes_received;
 
-void uart_start(uint32_t baud, const struct uart_receiver *receiver) {
+void uart_start(uint32_t baud, const struct uart_receiver* receiver) {
     receiver_ = receiver;
     RCC_AHB1ENR |= RCC_AHB1ENR_GPIOA;
     RCC_APB2ENR |= RCC_APB2ENR_USART1;
@@ -16,7 +16,7 @@ void uart_start(uint32_t baud, const struct uart_receiver *receiver) {
     NVIC_ISER(USART1_IRQ / 32u) = 1u << USART1_IRQ % 32u;
 }
 
-void uart_write(const uint8_t *bytes, size_t count) {
+void uart_write(const uint8_t* bytes, size_t count) {
     /* Not by interrupt: the emulator's model of this UART never raises the one for an empty transmitter. */
     for (size_t i = 0; i < count; i++) {
         while (!(USART1_SR & USART_SR_TXE)) {

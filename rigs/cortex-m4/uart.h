@@ -11,9 +11,9 @@ struct uart_receiver {
     void (*overrun)(void);
 };
 
-void uart_start(uint32_t baud, const struct uart_receiver *receiver);
+void uart_start(uint32_t baud, const struct uart_receiver* receiver);
 /* Returns when the last byte is in the transmitter. */
-void uart_write(const uint8_t *bytes, size_t count);
+void uart_write(const uint8_t* bytes, size_t count);
 /* Advances with each byte received. */
 extern volatile uint32_t uart_bytes_received;
 

@@ -2,6 +2,7 @@
 import os
 import pathlib
 import select
+import shutil
 import signal
 import struct
 import subprocess
@@ -29,16 +30,16 @@ def exchange(path, data, wait_s=5.0):
     return got
 
 
-def emulators():
-    """Process numbers of the emulators that run our echo image from this very folder."""
-    found, image = [], os.fsencode(support.images / "halflsb-echo.elf")
+def emulators(image):
+    """Process numbers of the emulators that run this image."""
+    found = set()
     for folder in pathlib.Path("/proc").glob("[0-9]*"):
         try:
             command = (folder / "cmdline").read_bytes().split(b"\0")
         except OSError:
             continue
-        if command[0].endswith(b"qemu-system-arm") and image in command:
-            found.append(int(folder.name))
+        if command[0].endswith(b"qemu-system-arm") and os.fsencode(image) in command:
+            found.add(int(folder.name))
     return found
 
 
@@ -56,11 +57,13 @@ class Emulate(unittest.TestCase):
         self.folder = tempfile.TemporaryDirectory()
         self.addCleanup(self.folder.cleanup)
         self.link = os.path.join(self.folder.name, "board")
-        self.before = set(emulators())
+        # A copy of our own, so that other tests' emulators are not taken for ours.
+        self.image = os.path.join(self.folder.name, "echo.elf")
+        shutil.copy(support.images / "halflsb-echo.elf", self.image)
 
     def start(self, *options, image=None):
         process = subprocess.Popen(
-            [EMULATE, image or support.images / "halflsb-echo.elf", "--link", self.link, *options],
+            [EMULATE, image or self.image, "--link", self.link, *options],
             stdout=subprocess.PIPE,
             stderr=subprocess.PIPE,
             text=True,
@@ -71,14 +74,14 @@ class Emulate(unittest.TestCase):
         return process
 
     def mine(self):
-        return set(emulators()) - self.before
+        return emulators(self.image)
 
     def refused(self, problem, *options, image=None):
         process = self.start(*options, image=image)
         self.assertEqual(process.wait(20), 1)
         self.assertIn(problem, process.stderr.read())
         self.assertEqual(process.stdout.read(), "")
-        self.assertEqual(self.mine(), set())
+        self.assertEqual(emulators(image or self.image), set())
 
     def test_the_line_can_be_opened_many_times_and_loses_no_first_byte(self):
         with emulator("halflsb-echo.elf") as path:
@@ -140,13 +143,12 @@ class Emulate(unittest.TestCase):
         self.assertEqual(again.wait(5), 0)
 
     def test_with_parent_dies_it_ends_when_its_parent_is_killed(self):
-        image = support.images / "halflsb-echo.elf"
         parent = subprocess.Popen(
             [
                 sys.executable,
                 "-c",
                 "import subprocess, sys, time\nsubprocess.Popen(sys.argv[1:])\ntime.sleep(60)",
-                *map(str, [EMULATE, image, "--link", self.link, "--parent-dies"]),
+                *map(str, [EMULATE, self.image, "--link", self.link, "--parent-dies"]),
             ],
             stdout=subprocess.PIPE,
             text=True,
@@ -160,7 +162,7 @@ class Emulate(unittest.TestCase):
 
     def image_with(self, name, vectors):
         """The echo image with other bytes where the processor starts."""
-        image = bytearray((support.images / "halflsb-echo.elf").read_bytes())
+        image = bytearray(pathlib.Path(self.image).read_bytes())
         (headers,) = struct.unpack_from("<I", image, 28)  # e_phoff
         (code,) = struct.unpack_from("<I", image, headers + 4)  # p_offset of the first segment
         image[code : code + len(vectors)] = vectors

@@ -37,6 +37,7 @@ Q15, Q31 = 1, 2
 FILTERS = [
     ("load-cell", Q15, Q15),
     ("smoothing", Q15, Q15),
+    ("quick-smoothing", Q15, Q15),
     ("mains-notch", Q15, Q15),
     ("settle", Q15, Q15),
     ("settle-q31", Q31, Q31),
