@@ -44,7 +44,7 @@ Outcome<void> stream(const CaseStage& stage, CaseJudge& judge, StreamFacts& fact
             send_ahead(stage, facts.samples_sent, codes);
             judge.add(received->samples);
         }
-        stage.observer.progress(stage.number, facts.samples_received, total);
+        stage.observer.progress(stage.place, facts.samples_received, total);
     }
     return {};
 }

@@ -15,7 +15,8 @@ namespace halflsb {
 struct CaseStage {
     const Plan& plan;
     const Case& the_case;
-    std::size_t number;         ///< from 1
+    std::size_t number;         ///< in the plan, from 1
+    std::size_t place;          ///< among the selected ones, from 1
     std::size_t filter_number;  ///< of the board's greeting
     Wire& wire;
     long baud;  ///< 0 where it has no meaning

@@ -2,6 +2,7 @@
 #pragma once
 
 #include <cstdint>
+#include <optional>
 #include <string>
 
 #include "runner/world/result.hpp"
@@ -12,10 +13,15 @@ class RunObserver {
 public:
     virtual ~RunObserver() = default;
     virtual void warning(const std::string& text) = 0;
-    /// Board greeted, everything checked, no sample sent yet; `wire_s` is what all cases will take.
-    virtual void opening(const RunResult& run, double wire_s) = 0;
-    virtual void progress(std::size_t case_number, std::int64_t samples_done, std::int64_t samples_total) = 0;
-    virtual void finished(const RunResult& run, const CaseResult& result) = 0;
+    /// Files read and the run's folder made; the board is not touched yet.
+    virtual void starting(const RunResult& run) = 0;
+    /// The board greeted and everything agrees, no sample sent yet; `wire_s` is what all cases will take, where baud
+    /// has a meaning.
+    virtual void greeted(const RunResult& run, std::optional<double> wire_s) = 0;
+    /// `place` of the case among the selected ones, from 1.
+    virtual void progress(std::size_t place, std::int64_t samples_done, std::int64_t samples_total) = 0;
+    /// The last of run.cases is done and recorded.
+    virtual void finished(const RunResult& run) = 0;
 };
 
 }  // namespace halflsb

@@ -45,6 +45,8 @@ constexpr std::size_t largest_text_bytes = 24, largest_build_id_bytes = 32, larg
 constexpr std::size_t largest_load_values = 8;
 /// Content of the largest message outside the stream: page 0 of a greeting with everything full.
 constexpr std::size_t largest_page_content_bytes = 80;
+/// Of the bodies of SAMPLES (seq) and RESPONSE (seq, ticks), what stands before the samples.
+constexpr std::size_t samples_fixed_bytes = 2, response_fixed_bytes = 9;
 
 struct Hello {
     std::uint32_t nonce = 0;

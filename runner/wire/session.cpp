@@ -9,7 +9,7 @@ constexpr std::size_t incoming_bytes = 16384;
 /// Enough for the kernel to chew on while answers are read; a resend waits until they are out.
 constexpr std::size_t outgoing_enough_bytes = 4096;
 /// Bytes of SAMPLES and RESPONSE beside their words.
-constexpr std::size_t samples_fixed_bytes = 2, response_fixed_bytes = 9;
+
 
 std::size_t size_of(int count) { return static_cast<std::size_t>(count); }
 
@@ -51,12 +51,12 @@ Duration FramedSession::line_time(std::size_t bytes) const {
 }
 
 std::size_t FramedSession::frame_bytes_to_board() const {
-    return largest_frame_bytes(samples_fixed_bytes +
+    return largest_frame_bytes(message::samples_fixed_bytes +
                                size_of(block_samples_ * filter_.channels_in) * filter_.input.word_bytes());
 }
 
 std::size_t FramedSession::frame_bytes_to_host() const {
-    return largest_frame_bytes(response_fixed_bytes +
+    return largest_frame_bytes(message::response_fixed_bytes +
                                size_of(block_samples_ * filter_.channels_out) * filter_.output.word_bytes());
 }
 

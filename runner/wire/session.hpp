@@ -12,6 +12,7 @@
 #include "runner/wire/messages.hpp"
 #include "runner/wire/window.hpp"
 #include "runner/wire/wire.hpp"
+#include "runner/wire/wire_cost.hpp"
 
 namespace halflsb {
 
@@ -69,6 +70,7 @@ private:
 
     // Time that the line needs.
     Duration line_time(std::size_t bytes) const;
+    WireCost cost(std::int64_t samples) const;
     std::size_t frame_bytes_to_board() const;
     std::size_t frame_bytes_to_host() const;
     Duration round_trip(std::size_t frames) const;

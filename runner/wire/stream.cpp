@@ -3,6 +3,7 @@
 #include <cassert>
 
 #include "runner/wire/session.hpp"
+#include "runner/wire/wire_cost.hpp"
 
 namespace halflsb {
 namespace {
@@ -213,27 +214,13 @@ WireFigures FramedSession::figures() const {
     return figures;
 }
 
-namespace {
-
-/// Blocks of `block` samples and a shorter last one.
-std::int64_t bytes_of_stream(std::int64_t samples, std::int64_t block, std::size_t fixed,
-                             std::size_t bytes_per_sample) {
-    if (samples <= 0 || block <= 0) return 0;
-    const auto frame = [&](std::int64_t count) {
-        return static_cast<std::int64_t>(largest_frame_bytes(fixed + size_of(count) * bytes_per_sample));
-    };
-    const std::int64_t rest = samples % block;
-    return samples / block * frame(block) + (rest > 0 ? frame(rest) : 0);
+WireCost FramedSession::cost(std::int64_t samples) const {
+    return wire_cost(samples, block_samples_, size_of(filter_.channels_in) * filter_.input.word_bytes(),
+                     size_of(filter_.channels_out) * filter_.output.word_bytes());
 }
 
-}  // namespace
+std::int64_t FramedSession::bytes_to_board(std::int64_t samples) const { return cost(samples).bytes_to_board; }
 
-std::int64_t FramedSession::bytes_to_board(std::int64_t samples) const {
-    return bytes_of_stream(samples, block_samples_, 2, size_of(filter_.channels_in) * filter_.input.word_bytes());
-}
-
-std::int64_t FramedSession::bytes_to_host(std::int64_t samples) const {
-    return bytes_of_stream(samples, block_samples_, 9, size_of(filter_.channels_out) * filter_.output.word_bytes());
-}
+std::int64_t FramedSession::bytes_to_host(std::int64_t samples) const { return cost(samples).bytes_to_host; }
 
 }  // namespace halflsb

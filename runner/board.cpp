@@ -1,0 +1,149 @@
+#include "runner/board.hpp"
+
+#include <spdlog/spdlog.h>
+
+#include "runner/link/serial.hpp"
+#include "runner/wire/framed_wire.hpp"
+#include "runner/world/command.hpp"
+
+namespace halflsb {
+namespace {
+
+/// A board that is only asked whether flashing can be skipped need not answer: it may be blank.
+constexpr double probe_s = 1.0;
+
+std::string filter_names(const Greeting& greeting) {
+    std::string names;
+    for (const BoardFilter& filter : greeting.filters) names += (names.empty() ? "\"" : ", \"") + filter.name + "\"";
+    return names.empty() ? "none" : names;
+}
+
+WireLimits limits_of(const Rig& rig, double greet_s) {
+    WireLimits limits;
+    limits.greet = seconds(greet_s);
+    limits.answer = seconds(rig.answer_s);
+    limits.block_samples = rig.block_samples;
+    return limits;
+}
+
+Outcome<Board> greet(const Rig& rig, const Clock& clock, double greet_s) {
+    auto link = open_serial({rig.port, rig.baud}, clock);
+    if (!link) return link.error();
+    Board board;
+    board.link = std::move(*link);
+    board.wire = make_framed_wire(*board.link, clock, limits_of(rig, greet_s));
+    auto greeting = board.wire->greet();
+    if (!greeting) return greeting.error();
+    board.greeting = std::move(*greeting);
+    return board;
+}
+
+/// True when the board already runs the image, so that flashing it again would change nothing.
+Outcome<bool> runs_already(const Rig& rig, const Image& image, const Clock& clock) {
+    auto board = greet(rig, clock, std::min(probe_s, rig.greet_s));
+    if (board) return board->greeting.build_id == image.build_id;
+    if (board.error().kind == ErrorKind::interrupted) return board.error();
+    spdlog::info("before flashing: {}", to_text(board.error()));
+    return false;
+}
+
+}  // namespace
+
+Outcome<std::size_t> agreeing_filter(const Greeting& greeting, const Signal& signal, const std::string& port) {
+    const auto refuse = [&](std::string problem, std::string remedy) { return Error{ErrorKind::bench, port, std::move(problem), std::move(remedy)}; };
+    std::size_t number = greeting.filters.size();
+    if (signal.filter.empty()) {
+        if (greeting.filters.size() != 1) {
+            return refuse("the board has " + std::to_string(greeting.filters.size()) + " filters: " + filter_names(greeting),
+                          "name the one the plan is about: filter = \"...\" in [signal]");
+        }
+        number = 0;
+    } else {
+        for (std::size_t i = 0; i < greeting.filters.size(); ++i) {
+            if (greeting.filters[i].name == signal.filter) number = i;
+        }
+        if (number == greeting.filters.size()) {
+            return refuse("the board has no filter \"" + signal.filter + "\"; it has " + filter_names(greeting),
+                          "correct filter in [signal] of the plan, or flash the firmware that has it");
+        }
+    }
+    const BoardFilter& filter = greeting.filters[number];
+    const auto differs = [&](const std::string& what, std::string_view board, std::string_view plan) {
+        return refuse("filter \"" + filter.name + "\" has " + what + " " + std::string(board) + ", the plan says " + std::string(plan),
+                      "the plan's [signal] states facts of the firmware: correct it, or flash the firmware it is about");
+    };
+    if (!(filter.input == signal.input)) return differs("input", filter.input.name, signal.input.name);
+    if (!(filter.output == signal.output)) return differs("output", filter.output.name, signal.output.name);
+    if (filter.channels_in != 1 || filter.channels_out != 1) {
+        return differs("channels", std::to_string(filter.channels_in) + " in, " + std::to_string(filter.channels_out) + " out", "1 in, 1 out");
+    }
+    return number;
+}
+
+Outcome<Board> open_board(const Rig& rig, const Signal& signal, const std::optional<Image>& image, const Clock& clock,
+                          FirmwareCheck& firmware) {
+    if (image) {
+        firmware.image_file = image->file;
+        firmware.image_build_id = image->build_id;
+    }
+    if (!rig.before_run.empty()) {
+        bool skip = false;
+        if (image) {
+            auto already = runs_already(rig, *image, clock);
+            if (!already) return already.error();
+            skip = *already;
+        }
+        firmware.before_run_skipped = skip;
+        if (!skip) {
+            for (const auto& command : rig.before_run) {
+                auto ran = run_command(with_image(command, image ? image->file : ""), rig.folder, seconds(rig.before_run_limit_s), clock);
+                if (!ran) return ran.error();
+            }
+        }
+    }
+    auto board = greet(rig, clock, rig.greet_s);
+    if (!board) return board.error();
+    if (image) {
+        const std::string& build_id = board->greeting.build_id;
+        if (build_id != image->build_id) {
+            return Error{ErrorKind::bench, board->link->name(),
+                         "the board runs " + (build_id.empty() ? "a firmware without a build-id" : "build-id " + build_id) + ", " + image->file + " is " + image->build_id,
+                         "flash it: the old firmware must not be signed for the new one"};
+        }
+        firmware.state = FirmwareCheck::State::agrees;
+    }
+    auto number = agreeing_filter(board->greeting, signal, board->link->name());
+    if (!number) return number.error();
+    board->filter_number = *number;
+    return board;
+}
+
+Outcome<void> greet_again(Board& board, const Rig& rig, const Clock& clock) {
+    board.wire = make_framed_wire(*board.link, clock, limits_of(rig, rig.greet_s));
+    auto greeting = board.wire->greet();
+    if (!greeting) return greeting.error();
+    const std::string& name = board.greeting.filters[board.filter_number].name;
+    if (greeting->build_id != board.greeting.build_id || greeting->serial != board.greeting.serial ||
+        board.filter_number >= greeting->filters.size() || greeting->filters[board.filter_number].name != name) {
+        return Error{ErrorKind::bench, board.link->name(), "another board or firmware answers than at the start", "what was reconnected or flashed meanwhile?"};
+    }
+    board.greeting = std::move(*greeting);
+    return {};
+}
+
+BoardFacts facts_of(const Board& board, const Rig& rig) {
+    const BoardFilter& filter = board.greeting.filters[board.filter_number];
+    BoardFacts facts;
+    facts.rig_name = rig.name;
+    facts.link = board.link->name();
+    facts.serial = board.greeting.serial;
+    facts.build_id = board.greeting.build_id;
+    facts.filter = filter.name;
+    facts.injection = name_of(filter.injection);
+    facts.block_samples = std::min(board.greeting.max_block_samples, rig.block_samples);
+    facts.credit_blocks = board.greeting.credit_blocks;
+    facts.tick_hz = board.greeting.tick_hz;
+    return facts;
+}
+
+}  // namespace halflsb

@@ -1,0 +1,37 @@
+#include "runner/commands.hpp"
+
+#include "runner/cli/exit_status.hpp"
+#include "runner/link/ports.hpp"
+#include "runner/report/terminal_report.hpp"
+#include "runner/world/printable.hpp"
+
+namespace halflsb {
+
+const char* const tool_version = HALFLSB_VERSION;
+
+TextStyle style_of(const Terminal& terminal, Stream stream, ColourWish wish) {
+    return {wants_colour(terminal, stream, wish), columns_for(terminal, stream), shows_unicode(terminal)};
+}
+
+int tell(const Error& error, const Options& options, const Desk& desk) {
+    (void)desk.terminal.write(Stream::err, error_text(error, style_of(desk.terminal, Stream::err, options.colour)));
+    return exit_status_of(error);
+}
+
+int ports_command(const Desk& desk) {
+    const auto ports = list_ports();
+    if (!ports) return tell(ports.error(), {}, desk);
+    if (ports->empty()) {
+        (void)desk.terminal.write(Stream::err, "no serial port is plugged in\n");
+        return 0;
+    }
+    const TextStyle style = style_of(desk.terminal, Stream::out, ColourWish::automatic);
+    Table table{{{"device", false, 0}, {"stable name", false, 0}, {"description", false, 1}}, {}, 0};
+    for (const PortInfo& port : *ports) {
+        table.rows.push_back({printable(port.device), port.stable_name.empty() ? "-" : printable(port.stable_name), printable(port.description)});
+    }
+    const auto written = desk.terminal.write(Stream::out, laid_out(style, table));
+    return written ? 0 : tell(written.error(), {}, desk);
+}
+
+}  // namespace halflsb

@@ -1,0 +1,30 @@
+// The commands of the program: each turns options into text on the terminal and an exit status.
+#pragma once
+
+#include "runner/cli/options.hpp"
+#include "runner/cli/terminal.hpp"
+#include "runner/report/text_style.hpp"
+#include "runner/world/clock.hpp"
+#include "runner/world/files.hpp"
+
+namespace halflsb {
+
+/// What the commands share.
+struct Desk {
+    Terminal& terminal;
+    Files& files;
+    const Clock& clock;
+};
+
+int check_command(const Options& options, const Desk& desk);
+int predict_command(const Options& options, const Desk& desk);
+int ports_command(const Desk& desk);
+
+/// The style of a stream: colour, width and signs that it takes.
+TextStyle style_of(const Terminal& terminal, Stream stream, ColourWish wish);
+/// An error to standard error; its exit status.
+int tell(const Error& error, const Options& options, const Desk& desk);
+
+extern const char* const tool_version;
+
+}  // namespace halflsb

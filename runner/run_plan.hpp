@@ -1,0 +1,36 @@
+// One plan on one rig: the main job, readable as a list of calls.
+#pragma once
+
+#include <cstdint>
+#include <optional>
+#include <string>
+#include <vector>
+
+#include "oracle/judge/plan.hpp"
+#include "runner/board.hpp"
+#include "runner/config/rig.hpp"
+#include "runner/run_observer.hpp"
+#include "runner/world/clock.hpp"
+#include "runner/world/files.hpp"
+#include "runner/world/result.hpp"
+
+namespace halflsb {
+
+struct RunRequest {
+    std::string tool_version;
+    Plan plan;
+    Rig rig;
+    std::string plan_text, rig_text;     ///< of both files, for the record
+    std::vector<std::size_t> selected;   ///< indices of the plan's cases, ascending
+    std::optional<Image> image;
+    std::optional<std::string> out;      ///< folder of the run
+    std::optional<std::uint64_t> seed;   ///< as given on the command line
+    std::optional<std::string> root;     ///< likewise
+    std::vector<std::string> warnings;
+};
+
+/// Never throws away a finished case: each is on the disk before the next begins. What ended the run
+/// early, if anything, is in ended_by; an invalid case does not end it as long as the board answers.
+RunResult run_plan(const RunRequest& request, Files& files, const Clock& clock, RunObserver& observer);
+
+}  // namespace halflsb
