@@ -12,16 +12,18 @@ namespace {
 
 constexpr std::size_t most_tones = 1000;
 
-/// sin(2 pi (start + n turns_per_sample)); start and step exact to 2^-128 and 2^-127.
+/// sin(2 pi (start + n step)), in integers modulo one turn. The step is truncated to 2^-128 turns, so
+/// the phase is good to 2^-88 turns for n up to 2^40.
 struct Tone {
-    Wide turns_per_sample;
+    TurnFraction step = 0;
     TurnFraction start = 0;
 
-    double at(std::int64_t own_index) const {
-        const auto count = static_cast<Uint128>(static_cast<std::uint64_t>(own_index));
-        return sine_of_turns(start + phase_after(turns_per_sample, count));
-    }
+    TurnFraction phase_at(std::int64_t own_index) const { return start + step * static_cast<std::uint64_t>(own_index); }
 };
+
+Tone tone_of(double frequency_hz, double rate_hz, TurnFraction start) {
+    return {phase_after(wide(frequency_hz) / wide(rate_hz), 1), start};
+}
 
 class Sine final : public PlacedStimulus {
 public:
@@ -35,7 +37,12 @@ public:
 
 private:
     void fill_own(std::int64_t first_own_index, std::span<double> ratios) const override {
-        for (double& ratio : ratios) ratio = placement().level_ratio * tone_.at(first_own_index++);
+        // Adding the step is the same integer as multiplying it, so any start gives the same phase.
+        TurnFraction phase = tone_.phase_at(first_own_index);
+        for (double& ratio : ratios) {
+            ratio = placement().level_ratio * sine_of_turns(phase);
+            phase += tone_.step;
+        }
     }
 
     Tone tone_;
@@ -56,7 +63,7 @@ StimulusOutcome make_sine(const Recipe& recipe, const ParameterValues& values, c
                            " Hz, zero in every sample",
                        "Give phase_turns = 0.25, or a lower frequency.");
     }
-    const Tone tone{wide(frequency_hz) / wide(context.rate_hz), start};
+    const Tone tone = tone_of(frequency_hz, context.rate_hz, start);
     return std::unique_ptr<const Stimulus>(std::make_unique<Sine>(*placement, tone, frequency_hz / context.rate_hz));
 }
 
@@ -68,13 +75,18 @@ public:
 
 private:
     void fill_own(std::int64_t first_own_index, std::span<double> ratios) const override {
-        const auto count = static_cast<double>(tones_.size());
-        for (double& ratio : ratios) {
-            double sum = 0.0;  // never above `count`: whole numbers that small are exact, and rounding keeps order
-            for (const Tone& tone : tones_) sum += tone.at(first_own_index);
-            ratio = placement().level_ratio * (sum / count);
-            ++first_own_index;
+        // A tone at a time; each sample still sums its tones in their order. The sum never passes their
+        // number: whole numbers that small are exact, and rounding keeps order.
+        std::fill(ratios.begin(), ratios.end(), 0.0);
+        for (const Tone& tone : tones_) {
+            TurnFraction phase = tone.phase_at(first_own_index);
+            for (double& ratio : ratios) {
+                ratio += sine_of_turns(phase);
+                phase += tone.step;
+            }
         }
+        const auto count = static_cast<double>(tones_.size());
+        for (double& ratio : ratios) ratio = placement().level_ratio * (ratio / count);
     }
 
     std::vector<Tone> tones_;
@@ -95,7 +107,7 @@ StimulusOutcome make_multitone(const Recipe& recipe, const ParameterValues& valu
     for (const double frequency_hz : frequencies_hz) {
         if (auto error = frequency_error("frequencies_hz", frequency_hz, context.rate_hz)) return *error;
         const TurnFraction start = Uint128{random_bits(seed, RandomPurpose::phases, tones.size())} << 64;
-        tones.push_back({wide(frequency_hz) / wide(context.rate_hz), start});
+        tones.push_back(tone_of(frequency_hz, context.rate_hz, start));
         spectrum.tones.push_back(frequency_hz / context.rate_hz);
     }
     std::vector<double> sorted_hz = frequencies_hz;

@@ -1,0 +1,2 @@
+add_executable(stimuli_bench stimuli_bench.cpp)
+target_link_libraries(stimuli_bench PRIVATE stimuli)
