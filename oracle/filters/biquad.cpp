@@ -18,8 +18,7 @@ constexpr double vanished = 1e-200;
 }  // namespace
 
 BiquadFilter::Section::Section(const BiquadSection& s)
-    : direct(s.b0), feed_change(difference_of_product(s.b2, s.b0, s.a2)), mirrored(s.a1 > 0.0) {
-    const double g = mirrored ? -1.0 : 1.0;
+    : g(s.a1 > 0.0 ? -1.0 : 1.0), direct(s.b0), feed_change(difference_of_product(s.b2, s.b0, s.a2)) {
     const double numerator = sum_of_three(s.b0, g * s.b1, s.b2);
     const double denominator = sum_of_three(1.0, g * s.a1, s.a2);
     feed_value = g * difference_of_product(numerator, s.b0, denominator);  // = c1 + g c2, without its cancellation
@@ -27,35 +26,31 @@ BiquadFilter::Section::Section(const BiquadSection& s)
     change_gain = g * s.a2;
 }
 
-void BiquadFilter::Section::reset() { x1 = x2 = v = d = 0.0; }
+inline double BiquadFilter::Section::step(double x) {
+    const double fed = feed_value * x1 + feed_change * (x2 - g * x1);
+    d = (change_gain * d - value_gain * v) + fed;
+    v = d + g * v;
+    x2 = x1;
+    x1 = x;
+    return direct * x + v;
+}
 
 void BiquadFilter::Section::drop_vanished() {
     if (std::fabs(v) < vanished && std::fabs(d) < vanished) v = d = 0.0;
 }
 
-template <bool is_mirrored>
-void BiquadFilter::Section::run_form(std::span<const double> in, double* out) {
-    double past1 = x1, past2 = x2, value = v, change = d;
+// Sample by sample through a few sections held in registers: while one waits for its own feedback the
+// processor works on the others.
+template <std::size_t... index>
+void BiquadFilter::run_group(Section* sections, std::span<const double> in, double* out,
+                             std::index_sequence<index...>) {
+    Section held[] = {sections[index]...};
     for (std::size_t i = 0; i < in.size(); ++i) {
-        const double fed = feed_value * past1 + feed_change * (is_mirrored ? past2 + past1 : past2 - past1);
-        change = (change_gain * change - value_gain * value) + fed;
-        value = is_mirrored ? change - value : change + value;
-        past2 = past1;
-        past1 = in[i];
-        out[i] = direct * past1 + value;
+        double sample = in[i];
+        ((sample = held[index].step(sample)), ...);
+        out[i] = sample;
     }
-    x1 = past1;
-    x2 = past2;
-    v = value;
-    d = change;
-}
-
-void BiquadFilter::Section::run(std::span<const double> in, double* out) {
-    if (mirrored) {
-        run_form<true>(in, out);
-    } else {
-        run_form<false>(in, out);
-    }
+    ((sections[index] = held[index]), ...);
 }
 
 BiquadFilter::BiquadFilter(const BiquadCascade& design) : until_check_(check_every_samples) {
@@ -73,8 +68,23 @@ void BiquadFilter::process(std::span<const double> in, std::span<double> out) {
         const std::size_t count = std::min(in.size() - done, until_check_);
         const std::span<double> to = out.subspan(done, count);
         std::span<const double> from = in.subspan(done, count);
-        for (Section& section : sections_) {
-            section.run(from, to.data());
+        for (std::size_t first = 0; first < sections_.size();) {
+            Section* const group = &sections_[first];
+            switch (sections_.size() - first) {
+                case 1:
+                    run_group(group, from, to.data(), std::make_index_sequence<1>());
+                    break;
+                case 2:
+                    run_group(group, from, to.data(), std::make_index_sequence<2>());
+                    break;
+                case 3:
+                    run_group(group, from, to.data(), std::make_index_sequence<3>());
+                    break;
+                default:
+                    run_group(group, from, to.data(), std::make_index_sequence<4>());
+                    break;
+            }
+            first += 4;
             from = to;
         }
         done += count;

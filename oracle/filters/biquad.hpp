@@ -19,6 +19,7 @@
 // for low-pass, high-pass and notch, Q of 0.7 to 20.
 #pragma once
 
+#include <utility>
 #include <vector>
 
 #include "oracle/filters/filter.hpp"
@@ -34,17 +35,18 @@ public:
 private:
     struct Section {
         explicit Section(const BiquadSection& design);
-        void run(std::span<const double> in, double* out);
-        template <bool mirrored>
-        void run_form(std::span<const double> in, double* out);
-        void reset();
+        double step(double x);
+        void reset() { x1 = x2 = v = d = 0.0; }
         void drop_vanished();
 
+        double g;  ///< 1 or -1
         double direct, feed_value, feed_change, value_gain,
             change_gain;  ///< b0, c1 + g c2, c2, (1 + g a1 + a2) g, g a2
-        bool mirrored;    ///< g is -1
         double x1 = 0.0, x2 = 0.0, v = 0.0, d = 0.0;
     };
+
+    template <std::size_t... index>
+    static void run_group(Section* sections, std::span<const double> in, double* out, std::index_sequence<index...>);
 
     std::vector<Section> sections_;
     std::size_t until_check_;  ///< samples until states that have decayed to nothing are dropped

@@ -143,6 +143,9 @@ TEST_CASE("l1 norm: closed forms", "[filters]") {
     std::vector<double> delay(3000, 0.0);
     delay.back() = 1.0;
     CHECK_THAT(l1_norm({stage(BiquadCascade{{{1, 0, 0, -0.5, 0}}}), stage(Fir{delay})}), Catch::WithinAbs(2.0, 1e-11));
+    // A fast mode that hides a slow one of a millionth of it: h = 0.1^n + 1e-6 0.99^n, L1 = 1/0.9 + 1e-4.
+    const BiquadCascade hidden{{{1.0 + 1e-6, -0.99 - 1e-7, 0.0, -1.09, 0.099}}};
+    CHECK_THAT(l1_norm({stage(hidden)}), Catch::WithinRel(1.0 / 0.9 + 1e-4, 2e-12));
     // Eight equal poles: h rises for 70 samples before it decays; all terms positive, so L1 = 10^8.
     const BiquadCascade repeated{
         {{1, 0, 0, -1.8, 0.81}, {1, 0, 0, -1.8, 0.81}, {1, 0, 0, -1.8, 0.81}, {1, 0, 0, -1.8, 0.81}}};

@@ -1,0 +1,164 @@
+"""The filters against SciPy: outputs, frequency responses, group delays, norms and poles of random designs.
+
+SciPy runs FIR and biquads in transposed direct form II, and evaluates polynomials in z: other operations in
+another order than ours. What it cannot check, the digits at very low cut-offs, tests/oracle does with finer
+arithmetic.
+"""
+import subprocess
+import sys
+import time
+import warnings
+
+import numpy as np
+from scipy import signal
+
+DESIGNS_PER_KIND = 250
+SAMPLES = 700
+# Output against the largest it can be (L1 norm x peak of the input). Both sides stray by some N 2^-53 of it for FIR
+# and averages (600 terms: 7e-14), and for biquads by 2^-53 times the gain of 1/A, 1 / (1 - 0.95)^2 = 400 a section at
+# most: 4e-14, some times that through four sections.
+TOLERANCE = 1e-12
+# A slope from responses 2e-4 / N apart, N samples being the filter's memory: third derivatives stray by
+# (2 pi 1e-4)^2 / 6 of the delay, 7e-8, rounding by 1e-14 / 2e-4 of N: 5e-11.
+GROUP_DELAY_TOLERANCE = 1e-5
+
+
+def random_sections(rng):
+    """b0 b1 b2 a1 a2 rows with poles up to radius 0.95, gains near 1 at their largest."""
+    rows = []
+    for _ in range(rng.integers(1, 5)):
+        if rng.random() < 0.7:
+            radius, angle = rng.uniform(0.1, 0.95), rng.uniform(0, np.pi)
+            a1, a2 = -2 * radius * np.cos(angle), radius**2
+        else:
+            p, q = rng.uniform(-0.95, 0.95, 2)
+            a1, a2 = -(p + q), p * q
+        b = rng.uniform(-1, 1, 3)
+        peak = np.max(np.abs(signal.freqz(b, [1, a1, a2], 64)[1]))
+        rows.append([*(b / peak), a1, a2])
+    return rows
+
+
+def random_designs(rng):
+    """(name, stages): a stage is a kind and its numbers, as print_filters takes them."""
+    for _ in range(DESIGNS_PER_KIND):
+        yield "moving average", [(0, [float(rng.choice([1, 2, 3, 16, rng.integers(2, 600)]))])]
+    for _ in range(DESIGNS_PER_KIND):
+        taps = rng.uniform(-1, 1, rng.integers(1, 600))
+        if rng.random() < 0.5:
+            taps = taps + taps[::-1]
+        yield "fir", [(1, list(taps))]
+    for _ in range(DESIGNS_PER_KIND):
+        yield "biquad cascade", [(2, list(np.ravel(random_sections(rng))))]
+    for _ in range(DESIGNS_PER_KIND):
+        yield "chain", [
+            (2, list(np.ravel(random_sections(rng)))),
+            (0, [float(rng.integers(1, 40))]),
+            (1, list(rng.uniform(-1, 1, rng.integers(1, 40)))),
+        ]
+
+
+def as_sections(numbers):
+    rows = np.reshape(numbers, (-1, 5))
+    return np.column_stack([rows[:, :3], np.ones(len(rows)), rows[:, 3:]])
+
+
+def group_delay(b, a, w):
+    """SciPy's, quiet about frequencies where the filter returns nothing: those are left out later."""
+    with warnings.catch_warnings():
+        warnings.simplefilter("ignore", UserWarning)
+        return signal.group_delay((b, a), w)[1]
+
+
+def by_scipy(stages, frequencies, samples):
+    """Output, response, group delay, largest pole radius, and the memory in samples."""
+    response, delay, radius, memory = np.ones(len(frequencies), complex), np.zeros(len(frequencies)), 0.0, 1
+    w = 2 * np.pi * frequencies
+    for kind, numbers in stages:
+        if kind == 2:
+            sections = as_sections(numbers)
+            samples = signal.sosfilt(sections, samples)
+            response = response * signal.sosfreqz(sections, w)[1]
+            for row in sections:
+                delay = delay + group_delay(row[:3], row[3:], w)
+                radius = max(radius, np.max(np.abs(np.roots(row[3:]))))
+            memory += 100
+        else:
+            taps = np.array(numbers) if kind == 1 else np.full(int(numbers[0]), 1 / numbers[0])
+            samples = signal.lfilter(taps, 1, samples)
+            response = response * signal.freqz(taps, 1, w)[1]
+            delay = delay + group_delay(taps, [1.0], w)
+            memory += len(taps)
+    return samples, response, delay, radius, memory
+
+
+def l1_by_scipy(stages):
+    impulse = np.zeros(20000)
+    impulse[0] = 1
+    return np.sum(np.abs(by_scipy(stages, np.array([0.1]), impulse)[0]))
+
+
+def main():
+    program = sys.argv[1]
+    seed = int(sys.argv[2]) if len(sys.argv) > 2 else time.time_ns() % 2**32
+    print(f"seed {seed} (repeat with: filters_test.py PROGRAM {seed})")
+    rng = np.random.default_rng(seed)
+    cases = []
+    for name, stages in random_designs(rng):
+        memory = by_scipy(stages, np.array([0.1]), np.zeros(1))[4]
+        f = rng.uniform(0.01, 0.49, 6)
+        step = 1e-4 / memory
+        # 0 and 1/2 are where cancellation is worst; the pairs give a slope of the phase.
+        frequencies = np.concatenate([[0.0, 0.5], f, f - step, f + step])
+        cases.append((name, stages, f, step, frequencies, rng.uniform(-1, 1, SAMPLES)))
+
+    message = []
+    for _, stages, _, _, frequencies, samples in cases:
+        message.append([len(stages)])
+        for kind, numbers in stages:
+            message.append([kind, len(numbers), *numbers])
+        message += [[len(frequencies)], frequencies, [len(samples)], samples]
+    sent = np.concatenate([np.asarray(part, dtype=float) for part in message]).tobytes()
+    answer = np.frombuffer(subprocess.run([program], input=sent, capture_output=True, check=True).stdout)
+
+    checks, failures, worst, at = 0, 0, {}, 0
+
+    def check(case, what, deviation, tolerance):
+        nonlocal checks, failures
+        checks += 1
+        ratio = deviation / tolerance
+        worst[what] = max(worst.get(what, 0.0), ratio)
+        if not ratio <= 1:
+            failures += 1
+            print(f"FAILED case {case} ({cases[case][0]}): {what} off by {deviation:.3g}, allowed {tolerance:.3g}")
+
+    for number, (name, stages, f, step, frequencies, samples) in enumerate(cases):
+        output = answer[at : at + SAMPLES]
+        at += SAMPLES
+        pairs = answer[at : at + 2 * len(frequencies)]
+        response = pairs[0::2] + 1j * pairs[1::2]
+        at += 2 * len(frequencies)
+        l1, radius = answer[at : at + 2]
+        at += 2
+        expected, expected_response, delay, expected_radius, memory = by_scipy(stages, frequencies, samples)
+        norm = l1_by_scipy(stages)
+        check(number, "output", np.max(np.abs(output - expected)), TOLERANCE * norm)
+        check(number, "response", np.max(np.abs(response - expected_response)), TOLERANCE * norm)
+        # np.roots of a double pole is off by the root of 2^-52
+        check(number, "pole radius", abs(radius - expected_radius), 1e-7)
+        check(number, "L1 norm", abs(l1 - norm), 1e-11 * norm)
+        below, above = response[8:14], response[14:20]
+        loud = np.abs(expected_response[2:8]) > 0.05 * norm / memory
+        slope = -np.angle(above / np.where(below == 0, 1, below)) / (2 * np.pi * 2 * step)
+        for i in np.flatnonzero(loud):
+            check(number, "group delay", abs(slope[i] - delay[2 + i]), GROUP_DELAY_TOLERANCE * memory * norm / np.abs(expected_response[2 + i]))
+    if at != len(answer):
+        failures += 1
+        print(f"FAILED: {len(answer) - at} numbers too many in the answer")
+    for what, ratio in worst.items():
+        print(f"{what}: worst deviation {ratio:.3g} of what is allowed")
+    print(f"{checks} checks of {len(cases)} designs, {failures} failures")
+    return 1 if failures else 0
+
+
+sys.exit(main())
