@@ -131,6 +131,7 @@ struct Q15 {
     using Coefficients = biquad_q15_coefficients;
     using State = biquad_q15_state;
     using Filter = biquad_q15;
+    static constexpr FilterKind kind = FilterKind::biquad_q15;
     static constexpr halflsb_format format = HALFLSB_Q15;
     static constexpr double one = 16384.0;
     static constexpr auto init = biquad_q15_init;
@@ -142,6 +143,7 @@ struct Q31 {
     using Coefficients = biquad_q31_coefficients;
     using State = biquad_q31_state;
     using Filter = biquad_q31;
+    static constexpr FilterKind kind = FilterKind::biquad_q31;
     static constexpr halflsb_format format = HALFLSB_Q31;
     static constexpr double one = 1073741824.0;
     static constexpr auto init = biquad_q31_init;
@@ -153,6 +155,7 @@ struct F32 {
     using Coefficients = biquad_f32_coefficients;
     using State = biquad_f32_state;
     using Filter = biquad_f32;
+    static constexpr FilterKind kind = FilterKind::biquad_f32;
     static constexpr halflsb_format format = HALFLSB_F32;
     static constexpr double one = 1.0;
     static constexpr auto init = biquad_f32_init;
@@ -184,7 +187,7 @@ FilterParts biquad(std::string name, const typename Width::Coefficients (&table)
     Width::init(&s->filter, s->table.data(), s->state.data(), static_cast<std::uint8_t>(sections));
     FilterParts parts;
     parts.name = std::move(name);
-    parts.kind = std::is_same_v<Word, float> ? FilterKind::float_biquad : FilterKind::biquad;
+    parts.kind = Width::kind;
     parts.format = Width::format;
     parts.tables = 1;
     parts.reset = [s] { Width::reset(&s->filter); };

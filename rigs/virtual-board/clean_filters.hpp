@@ -13,7 +13,15 @@
 
 namespace halflsb::board {
 
-enum class FilterKind { average, adjustable_average, symmetric_fir, asymmetric_fir, biquad, float_biquad };
+enum class FilterKind {
+    average,
+    adjustable_average,
+    symmetric_fir,
+    asymmetric_fir,
+    biquad_q15,
+    biquad_q31,
+    biquad_f32
+};
 
 /// How the firmware came by its coefficients.
 struct TableFaults {

@@ -29,8 +29,7 @@ const std::vector<FaultEntry> entries = {
      round_by<DroppedBits::floor>},
     {"A02", "toward-zero", "", "dropped bits are cut toward zero, as C's division does", Shows::sum_or_product,
      round_by<DroppedBits::toward_zero>},
-    {"A03", "half-away", "", "ties round away from zero, not upward", Shows::sum_or_product,
-     round_by<DroppedBits::half_away>},
+    {"A03", "half-away", "", "ties round away from zero, not upward", Shows::tie, round_by<DroppedBits::half_away>},
     {"A04", "products-truncated", "", "each product loses its low bits before the sum", Shows::product,
      [](F faults, N, Ms) { faults.deviation.products_truncated = true; }},
     {"A05", "rounding-twice", "", "the rounding constant is added twice", Shows::sum_or_product,
@@ -137,6 +136,7 @@ std::string filters_showing(const FaultEntry& entry, const std::vector<FilterPar
 }  // namespace
 
 bool shows_in(Shows shows, FilterKind kind) {
+    const bool biquad = kind == FilterKind::biquad_q15 || kind == FilterKind::biquad_q31;
     const bool fir = kind == FilterKind::symmetric_fir || kind == FilterKind::asymmetric_fir;
     switch (shows) {
         case Shows::any_filter:
@@ -145,16 +145,19 @@ bool shows_in(Shows shows, FilterKind kind) {
             return true;
         case Shows::fixed_average:
             return kind == FilterKind::average;
+        // 30 bits are dropped from a q31 section: no stimulus of ours meets a tie there.
+        case Shows::tie:
+            return kind == FilterKind::average || fir || kind == FilterKind::biquad_q15;
         case Shows::sum_or_product:
-            return kind == FilterKind::average || fir || kind == FilterKind::biquad;
+            return kind == FilterKind::average || fir || biquad;
         case Shows::product:
-            return fir || kind == FilterKind::biquad;
+            return fir || biquad;
         case Shows::quantised_table:
-            return fir || kind == FilterKind::biquad;
+            return fir || biquad;
         case Shows::biquad:
-            return kind == FilterKind::biquad;
+            return biquad;
         case Shows::feedback:
-            return kind == FilterKind::biquad || kind == FilterKind::float_biquad;
+            return biquad || kind == FilterKind::biquad_f32;
         case Shows::asymmetric_fir:
             return kind == FilterKind::asymmetric_fir;
     }

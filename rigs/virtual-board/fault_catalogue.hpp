@@ -25,6 +25,7 @@ enum class Shows {
     any_filter,
     line,
     fixed_average,
+    tie,
     sum_or_product,
     product,
     quantised_table,
