@@ -7,6 +7,10 @@
 
 #include <stdint.h>
 
+#ifdef __cplusplus
+extern "C" {
+#endif
+
 struct biquad_f32_coefficients {
     float b0, b1, b2, a1, a2;
 };
@@ -25,5 +29,9 @@ void biquad_f32_init(struct biquad_f32* filter, const struct biquad_f32_coeffici
                      struct biquad_f32_state* state, uint8_t sections);
 void biquad_f32_reset(struct biquad_f32* filter);
 void biquad_f32_process(struct biquad_f32* filter, const float* in, float* out, uint16_t count);
+
+#ifdef __cplusplus
+}
+#endif
 
 #endif

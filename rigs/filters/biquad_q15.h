@@ -10,6 +10,10 @@
 
 #include <stdint.h>
 
+#ifdef __cplusplus
+extern "C" {
+#endif
+
 struct biquad_q15_coefficients {
     int16_t b0, b1, b2, a1, a2;
 };
@@ -30,5 +34,9 @@ void biquad_q15_init(struct biquad_q15* filter, const struct biquad_q15_coeffici
 void biquad_q15_reset(struct biquad_q15* filter);
 /* `out` may be `in`. */
 void biquad_q15_process(struct biquad_q15* filter, const int16_t* in, int16_t* out, uint16_t count);
+
+#ifdef __cplusplus
+}
+#endif
 
 #endif

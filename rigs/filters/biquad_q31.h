@@ -10,6 +10,10 @@
 
 #include <stdint.h>
 
+#ifdef __cplusplus
+extern "C" {
+#endif
+
 struct biquad_q31_coefficients {
     int32_t b0, b1, b2, a1, a2;
 };
@@ -28,5 +32,9 @@ void biquad_q31_init(struct biquad_q31* filter, const struct biquad_q31_coeffici
                      struct biquad_q31_state* state, uint8_t sections);
 void biquad_q31_reset(struct biquad_q31* filter);
 void biquad_q31_process(struct biquad_q31* filter, const int32_t* in, int32_t* out, uint16_t count);
+
+#ifdef __cplusplus
+}
+#endif
 
 #endif

@@ -8,6 +8,10 @@
 
 #include <stdint.h>
 
+#ifdef __cplusplus
+extern "C" {
+#endif
+
 struct fir_q15 {
     const int16_t* taps; /* count long; may change between samples */
     int16_t* ring;       /* count long */
@@ -19,5 +23,9 @@ void fir_q15_init(struct fir_q15* filter, const int16_t* taps, int16_t* ring, ui
 void fir_q15_reset(struct fir_q15* filter);
 /* `out` may be `in`. */
 void fir_q15_process(struct fir_q15* filter, const int16_t* in, int16_t* out, uint16_t count);
+
+#ifdef __cplusplus
+}
+#endif
 
 #endif

@@ -8,6 +8,10 @@
 
 #include <stdint.h>
 
+#ifdef __cplusplus
+extern "C" {
+#endif
+
 /* 16384 x 32768 = 2^29, and twice that plus the divisor still fits 32 bits. */
 #define MOVING_AVERAGE_Q15_MOST_POINTS 16384
 
@@ -34,5 +38,9 @@ struct moving_average_i32 {
 void moving_average_i32_init(struct moving_average_i32* filter, int32_t* ring, uint16_t points);
 void moving_average_i32_reset(struct moving_average_i32* filter);
 void moving_average_i32_process(struct moving_average_i32* filter, const int32_t* in, int32_t* out, uint16_t count);
+
+#ifdef __cplusplus
+}
+#endif
 
 #endif

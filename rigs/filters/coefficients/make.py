@@ -134,9 +134,22 @@ def all_files():
     return files
 
 
+def designs_header(files):
+    """The doubles once more for C, so that the virtual board can store them wrongly on request."""
+    body = ""
+    for name, text in files.items():
+        if name.endswith(".txt"):
+            numbers = text.split()
+            symbol = name[:-4].replace("-", "_")
+            body += f"static const double {symbol}_design[{len(numbers)}] = {{\n    " + ",\n    ".join(numbers) + "};\n"
+    return header("designs", "the designs in double, in the order of the text files", body)
+
+
 def main():
     differing = 0
-    for name, content in all_files().items():
+    files = all_files()
+    files["designs.h"] = designs_header(files)
+    for name, content in files.items():
         path = FOLDER / name
         if sys.argv[1:] == ["--check"]:
             if not path.exists() or path.read_text() != content:

@@ -1,0 +1,33 @@
+#include "rigs/virtual-board/line_faults.hpp"
+
+#include <string_view>
+
+namespace halflsb::board {
+
+void SpoiltDirection::append(const std::uint8_t* bytes, std::size_t count, std::vector<std::uint8_t>& to) {
+    if (flip_every_ == 0 && drop_every_ == 0 && repeat_every_ == 0) {
+        to.insert(to.end(), bytes, bytes + count);
+        return;
+    }
+    for (const std::uint8_t* end = bytes + count; bytes != end; ++bytes) {
+        ++passed_;
+        if (drop_every_ != 0 && passed_ % drop_every_ == 0) continue;
+        std::uint8_t byte = *bytes;
+        if (flip_every_ != 0 && passed_ % flip_every_ == 0) {
+            byte = static_cast<std::uint8_t>(byte ^ (1u << (flipped_++ % 8)));
+        }
+        to.push_back(byte);
+        if (repeat_every_ != 0 && passed_ % repeat_every_ == 0) to.push_back(byte);
+    }
+}
+
+std::vector<std::uint8_t> boot_message() {
+    constexpr std::string_view text = "\r\nCW-7 load cell, loader 1.4\r\nself test ok\r\n";
+    std::vector<std::uint8_t> message(text.begin(), text.end());
+    for (int value : {0x00, 0xFF, 0x7E, 0x03, 0x90, 0x00, 0x05, 0x81, 0x11, 0x13}) {
+        message.push_back(static_cast<std::uint8_t>(value));
+    }
+    return message;
+}
+
+}  // namespace halflsb::board

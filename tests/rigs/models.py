@@ -1,0 +1,239 @@
+"""The board's filters and their faults in Python integers (and NumPy float32): written from the headers of rigs/filters
+and from the faults' descriptions, sharing no code with either."""
+
+import math
+import pathlib
+import struct
+
+import numpy
+
+COEFFICIENTS = pathlib.Path(__file__).resolve().parents[2] / "rigs/filters/coefficients"
+
+
+def design(name):
+    return [float(line) for line in (COEFFICIENTS / (name + ".txt")).read_text().split()]
+
+
+def half_away(value):
+    return int(math.copysign(math.floor(abs(value) + 0.5), value))
+
+
+ROUNDINGS = {
+    "half-up": lambda value, divisor: (2 * value + divisor) // (2 * divisor),
+    "floor": lambda value, divisor: value // divisor,
+    "toward-zero": lambda value, divisor: value // divisor if value >= 0 else -(-value // divisor),
+    "half-away": lambda value, divisor: (1 if value >= 0 else -1) * ((2 * abs(value) + divisor) // (2 * divisor)),
+    "twice": lambda value, divisor: (value + divisor) // divisor,
+}
+
+
+def wrap(value, bits):
+    value %= 1 << bits
+    return value - (1 << bits) if value >> (bits - 1) else value
+
+
+def into_word(value, bits, wraps):
+    if wraps:
+        return wrap(value, bits)
+    return min(max(value, -(1 << (bits - 1))), (1 << (bits - 1)) - 1)
+
+
+class Arithmetic:
+    def __init__(self, faults, bits):
+        self.bits = bits
+        self.wraps = "A07" in faults
+        self.unsaturated_feedback = "A08" in faults
+        self.truncated_products = "A04" in faults
+        self.more_shift = 1 if "C05" in faults else 0
+        names = {"A01": "floor", "A02": "toward-zero", "A03": "half-away", "A05": "twice"}
+        self.round = ROUNDINGS[next((names[f] for f in faults if f in names), "half-up")]
+
+    def sum_of_products(self, pairs, fraction_bits):
+        divisor = 1 << (fraction_bits + self.more_shift)
+        if self.truncated_products:
+            return sum((c * x) // divisor for c, x in pairs)
+        return self.round(sum(c * x for c, x in pairs), divisor)
+
+
+class Average:
+    def __init__(self, points, bits, faults):
+        self.arithmetic = Arithmetic(faults, bits)
+        self.points, self.length = points, points - (1 if "S02" in faults else 0)
+        self.narrow = "A10" in faults
+        self.reset()
+
+    def reset(self):
+        self.ring, self.position, self.sum = [0] * self.length, 0, 0
+
+    def reset_half(self):
+        self.ring[: self.length // 2] = [0] * (self.length // 2)
+        self.position = self.sum = 0
+
+    def step(self, x):
+        self.sum += x - self.ring[self.position]
+        if self.narrow:
+            self.sum = wrap(self.sum, self.arithmetic.bits)
+        self.ring[self.position] = x
+        self.position = (self.position + 1) % self.length
+        y = self.arithmetic.round(self.sum, self.points << self.arithmetic.more_shift)
+        return into_word(y, self.arithmetic.bits, self.arithmetic.wraps)
+
+
+class Fir:
+    def __init__(self, taps, faults):
+        quantise = math.trunc if "C03" in faults else half_away
+        self.taps = [quantise(tap * 32768.0) for tap in taps]
+        if "C10" in faults:
+            self.taps.reverse()
+        self.arithmetic = Arithmetic(faults, 16)
+        self.reset()
+
+    def reset(self):
+        self.ring, self.position = [0] * len(self.taps), 0
+
+    def reset_half(self):
+        half = len(self.taps) // 2
+        self.ring[:half] = [0] * half
+        self.position = 0
+
+    def step(self, x):
+        self.ring[self.position] = x
+        n = len(self.taps)
+        pairs = [(self.taps[k], self.ring[(self.position - k) % n]) for k in range(n)]
+        self.position = (self.position + 1) % n
+        return into_word(self.arithmetic.sum_of_products(pairs, 15), 16, self.arithmetic.wraps)
+
+
+class Biquad:
+    def __init__(self, numbers, bits, faults):
+        quantise = math.trunc if "C03" in faults else half_away
+        one = float(1 << (bits - 2))
+        self.sections = []
+        for at in range(0, len(numbers), 5):
+            b0, b1, b2, a1, a2 = (quantise(c * one) for c in numbers[at : at + 5])
+            self.sections.append((b0, b1, b2, a1 if "C07" in faults else -a1, -a2))
+        self.arithmetic = Arithmetic(faults, bits)
+        self.reset()
+
+    def reset(self):
+        self.states = [[0, 0, 0, 0] for _ in self.sections]
+
+    def reset_half(self):
+        for state in self.states:
+            state[:2] = [0, 0]
+
+    def step(self, x):
+        arithmetic = self.arithmetic
+        for coefficients, state in zip(self.sections, self.states):
+            x1, x2, y1, y2 = state
+            exact = arithmetic.sum_of_products(zip(coefficients, (x, x1, x2, y1, y2)), arithmetic.bits - 2)
+            y = into_word(exact, arithmetic.bits, arithmetic.wraps)
+            state[:] = [x, x1, exact if arithmetic.unsaturated_feedback else y, y1]
+            x = y
+        return x
+
+
+class FloatBiquad:
+    def __init__(self, numbers, faults):
+        self.sections = []
+        for at in range(0, len(numbers), 5):
+            b0, b1, b2, a1, a2 = (numpy.float32(c) for c in numbers[at : at + 5])
+            self.sections.append((b0, b1, b2, a1 if "C07" in faults else -a1, -a2))
+        self.reset()
+
+    def reset(self):
+        self.states = [[numpy.float32(0)] * 4 for _ in self.sections]
+
+    def reset_half(self):
+        for state in self.states:
+            state[:2] = [numpy.float32(0)] * 2
+
+    def step(self, x):
+        x = numpy.float32(x)
+        for coefficients, state in zip(self.sections, self.states):
+            total = coefficients[0] * x
+            for c, past in zip(coefficients[1:], state):
+                total = total + c * past
+            state[:] = [x, state[0], total, state[2]]
+            x = total
+        return float(x)
+
+
+class Passage:
+    """The faults on the way into and out of a filter, and of its reset."""
+
+    def __init__(self, inner, word, faults):
+        self.inner, self.word, self.faults = inner, word, faults
+        self.clear()
+
+    def clear(self):
+        self.count, self.late, self.held, self.half_buffer = 0, 0, 0, []
+
+    def reset(self):
+        if "S07" in self.faults:
+            return
+        self.clear()
+        if "S06" in self.faults:
+            self.inner.reset_half()
+        else:
+            self.inner.reset()
+
+    def begin_block(self):
+        if "S11" in self.faults:
+            self.inner.reset()
+
+    def step(self, x):
+        faults = self.faults
+        self.count += 1
+        if "S20" in faults:
+            return x
+        if "N04" in faults:
+            x = struct.unpack(">" + self.word, struct.pack("<" + self.word, x))[0]
+        if "N06" in faults:
+            x = -x if self.word == "f" else into_word(-x, 8 * struct.calcsize(self.word), False)
+        if "D01" in faults:
+            place = (self.count - 1) % 32
+            if (self.count - 1) // 32 % 10 == 9:
+                x = self.half_buffer[place]
+            else:
+                self.half_buffer[place : place + 1] = [x]
+        if self.count % 1000 == 0 and "D03" in faults:
+            return self.held
+        if self.count % 1000 == 0 and "D04" in faults:
+            self.inner.step(x)
+        y = self.inner.step(x)
+        self.held = y
+        if "S01" in faults:
+            y, self.late = self.late, y
+        return y
+
+
+WORDS = {"settle-q31": "i", "settle-f32": "f", "average-i32": "i"}
+
+
+def filter_of(name, faults):
+    if name == "settle-q31":
+        return Biquad(design("settle"), 32, faults)
+    if name == "settle-f32":
+        return FloatBiquad(design("settle"), faults)
+    if name in ("settle", "mains-notch"):
+        return Biquad(design(name), 16, faults)
+    if name in ("smoothing", "quick-smoothing"):
+        return Fir(design(name), faults)
+    return Average(16, 32 if name == "average-i32" else 16, faults)
+
+
+def model(name, faults=()):
+    return Passage(filter_of(name, faults), WORDS.get(name, "h"), faults)
+
+
+def response(filter_model, segments, block_samples):
+    """Each segment begins with a reset."""
+    answers = []
+    for segment in segments:
+        filter_model.reset()
+        for n, x in enumerate(segment):
+            if n % block_samples == 0:
+                filter_model.begin_block()
+            answers.append(filter_model.step(x))
+    return answers
