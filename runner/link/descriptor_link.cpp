@@ -12,12 +12,9 @@ namespace asio = boost::asio;
 using ErrorCode = boost::system::error_code;
 
 DescriptorLink::DescriptorLink(Descriptor line, std::string name, long baud, const Clock& clock)
-    : line_(context_, line.release()),
-      interrupt_(context_),
-      timer_(context_),
-      name_(std::move(name)),
-      baud_(baud),
-      clock_(clock) {
+    : line_(context_), interrupt_(context_), timer_(context_), name_(std::move(name)), baud_(baud), clock_(clock) {
+    line_.assign(line.get());
+    line.release();
     line_.non_blocking(true);
 }
 

@@ -9,7 +9,8 @@ namespace halflsb {
 
 class DescriptorLink final : public Link {
 public:
-    /// Takes `line`, makes it non-blocking. `clock` must outlive the link.
+    /// Takes `line`, makes it non-blocking. `clock` must outlive the link. Throws std::system_error when the
+    /// system has nothing left to watch it with: for the functions that open links, which return Errors.
     DescriptorLink(Descriptor line, std::string name, long baud, const Clock& clock);
     ~DescriptorLink() override;
 

@@ -12,6 +12,7 @@
 #include <climits>
 #include <cstdlib>
 #include <cstring>
+#include <exception>
 
 #include "runner/link/descriptor.hpp"
 #include "runner/link/descriptor_link.hpp"
@@ -137,7 +138,12 @@ Outcome<std::unique_ptr<Link>> open_serial(const SerialPort& port, const Clock& 
         if (info.device == device && !info.stable_name.empty() && info.stable_name != port.port && device == port.port)
             name += " (" + info.stable_name + ")";
     name += " at " + std::to_string(port.baud) + " baud";
-    return std::unique_ptr<Link>(std::make_unique<DescriptorLink>(std::move(line), std::move(name), port.baud, clock));
+    try {
+        return std::unique_ptr<Link>(
+            std::make_unique<DescriptorLink>(std::move(line), std::move(name), port.baud, clock));
+    } catch (const std::exception& reason) {
+        return Error{ErrorKind::defect, port.port, std::string("the port cannot be watched: ") + reason.what(), ""};
+    }
 }
 
 }  // namespace halflsb

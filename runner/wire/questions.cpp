@@ -8,7 +8,8 @@ namespace halflsb {
 namespace {
 
 /// Questions and answers outside the stream, as frames.
-constexpr std::size_t largest_question_bytes = largest_frame_bytes(message::largest_page_content_bytes - content_overhead_bytes);
+constexpr std::size_t largest_question_bytes =
+    largest_frame_bytes(message::largest_page_content_bytes - content_overhead_bytes);
 
 }  // namespace
 
@@ -116,8 +117,9 @@ Outcome<void> FramedSession::start(std::size_t filter_number) {
     filter_ = greeting_->filters[filter_number];
     const int asked = std::clamp(limits_.block_samples, 1, greeting_->max_block_samples);
     block_samples_ = asked;
-    decoder_ =
-        FrameDecoder(std::max(frame_bytes_to_host(), message::largest_page_content_bytes));
+    // Never smaller than for the stream before, whose last answers are still signs of life.
+    largest_content_ = std::max(largest_content_, frame_bytes_to_host());
+    decoder_ = FrameDecoder(largest_content_);
 
     Question question{message::Type::start, message::Type::started, next_nonce(), {}, "the answer to START"};
     message::encode(

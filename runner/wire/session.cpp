@@ -21,7 +21,7 @@ FramedSession::FramedSession(Link& link, const Clock& clock, const WireLimits& l
       limits_(limits),
       nonce_state_(nonce_seed),
       incoming_(incoming_bytes),
-      decoder_(message::largest_page_content_bytes) {}
+      decoder_(largest_content_) {}
 
 // ---------------------------------------------------------------------------------------------------------
 // Errors

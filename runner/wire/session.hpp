@@ -96,6 +96,7 @@ private:
     std::size_t outgoing_done_ = 0;
     message::Bytes incoming_;
     message::Bytes body_;  ///< scratch
+    std::size_t largest_content_ = message::largest_page_content_bytes;
     FrameDecoder decoder_;
     Arrivals arrivals_;
     const Question* question_ = nullptr;

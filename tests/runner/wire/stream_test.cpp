@@ -1,4 +1,6 @@
 // A stream on a line that loses nothing: order, figures, line use, credit, wrap.
+#include <malloc.h>
+
 #include <catch2/catch.hpp>
 
 #include "tests/runner/wire/bench.hpp"
@@ -274,4 +276,27 @@ TEST_CASE("stream: the board's counters are differences since its start", "[wire
     REQUIRE(rest);
     CHECK(rest->first_index == 3000);
     CHECK(rest->samples.size() == 3);
+}
+
+TEST_CASE("stream: memory does not grow with its length", "[wire][slow]") {
+    Bench bench;
+    bench.link.remembers = false;
+    bench.limits.block_samples = 64;
+    REQUIRE(bench.open(1));
+    Wire& wire = bench.session();
+    const std::vector<Code> block(64, 3);
+    std::int64_t received = 0;
+    const auto stream_until = [&](std::int64_t count) {
+        while (received < count) {
+            while (wire.room_samples() > 0) wire.send(block);
+            const Outcome<Received> step = wire.advance(bench.clock.now() + seconds(1.0));
+            REQUIRE(step);
+            received += static_cast<std::int64_t>(step->samples.size());
+        }
+        // Bytes that the program holds; a sanitizer's own allocator reports 0.
+        return mallinfo2().uordblks;
+    };
+    const std::size_t early = stream_until(20'000), late = stream_until(1'000'000);
+    // A byte kept for each block of 64 would be 15 kB.
+    CHECK(late < early + 8'192);
 }
