@@ -2,7 +2,9 @@
 import unittest
 
 import support
-from support import bits_of, board, filtered_on_host, noise
+from support import bits_of, board, emulator, filtered_on_host, noise
+from wire_client import SAMPLES as SAMPLES_FRAME
+from wire_client import WireClient, encode
 
 SAMPLES, SEED = 20_000, 20260
 
@@ -38,6 +40,19 @@ class TheResponse(unittest.TestCase):
                     samples = noise(3000, bits_of(filter_), SEED)
                     response, _, _ = client.stream(number, filter_, samples, greeting.block)
                     self.assertEqual(response, filtered_on_host(filter_, samples))
+
+    def test_a_host_that_vanishes_in_mid_stream_does_not_trouble_the_next(self):
+        with emulator("halflsb-cw7.elf") as line:
+            with WireClient(line) as client:
+                filter_ = client.greeting().filters[0]
+                block, credit = client.start(0, 256)
+                for sequence in range(credit):
+                    client.send_block(sequence, "h", noise(block, 16, sequence))
+                client.write(encode(bytes([SAMPLES_FRAME]) + bytes(100))[:50])  # and stops in the middle of a frame
+            with WireClient(line) as client:
+                samples = noise(1000, 16, SEED)
+                self.assertEqual(client.greeting().serial, "CW7-0042")
+                self.assertEqual(client.stream(0, filter_, samples, 256)[0], filtered_on_host(filter_, samples))
 
 
 if __name__ == "__main__":
