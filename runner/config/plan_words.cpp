@@ -70,13 +70,9 @@ const Recipe& signal_recipe() {
              .help = "Engineering unit of the output, \"g\" for example."},
             {.name = "full_scale_unit",
              .type = ParameterType::real,
-             .minimum = -1e300,
-             .maximum = 1e300,
              .help = "What full scale of the output means in that unit; not 0. Limits ending in _unit need it."},
             {.name = "output_per_input",
              .type = ParameterType::real,
-             .minimum = -1e300,
-             .maximum = 1e300,
              .help = "Value out per value in at gain 1; not 0. For input and output of different families (q, i, f), "
                      "and required there."},
             {.name = "quantise",

@@ -20,7 +20,7 @@ std::string found_text(const TomlValue& value) {
         case TomlValue::Kind::integer:
             return "the whole number " + std::to_string(value.integer);
         case TomlValue::Kind::real:
-            return "the number " + shown_number(value.real);
+            return "the number " + shown_number(value.real) + (value.real == std::floor(value.real) ? ".0" : "");
         case TomlValue::Kind::boolean:
             return value.boolean ? "true" : "false";
         default:

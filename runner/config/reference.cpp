@@ -16,7 +16,7 @@ namespace halflsb {
 
 namespace {
 
-constexpr std::string_view begin_marker = "<!-- reference: generated, see DEVELOPERS.md -->\n";
+constexpr std::string_view begin_marker = "<!-- reference: written by tests/runner/config/reference_test.cpp -->\n";
 constexpr std::string_view end_marker = "<!-- end of reference -->";
 
 std::string type_text(const Parameter& parameter) {
@@ -73,6 +73,9 @@ std::string rows(const Recipe& recipe) {
     std::string text;
     for (const Parameter& parameter : recipe.parameters) {
         std::string range = range_text(parameter);
+        for (const std::string_view word : {"of ", "from "}) {
+            if (range.starts_with(word)) range.erase(0, word.size());
+        }
         if (range.empty()) range = parameter.unit;
         text += row(parameter.name, type_text(parameter), range, default_text(parameter), parameter.help);
     }

@@ -85,6 +85,23 @@ Outcome<std::string> read_all(const std::string& place, const FileDescriptor& fi
     }
 }
 
+/// "../x", "a/../../x": above where it starts, as it is written. Told before anything is looked up, so that
+/// a plan cannot even ask what exists outside the root.
+bool climbs_out(std::string_view path) {
+    int depth = 0;
+    while (!path.empty()) {
+        const std::size_t slash = path.find('/');
+        const std::string_view part = path.substr(0, slash);
+        if (part == "..") {
+            if (--depth < 0) return true;
+        } else if (!part.empty() && part != ".") {
+            ++depth;
+        }
+        path = slash == std::string_view::npos ? std::string_view{} : path.substr(slash + 1);
+    }
+    return false;
+}
+
 /// The last part of a resolved path, opened part by part without following a link: what was resolved
 /// and checked cannot be exchanged for a link in between.
 Outcome<FileDescriptor> open_without_links(const std::string& place, const std::string& root, std::string_view inside,
@@ -127,6 +144,9 @@ Outcome<std::string> DiskFiles::read_under_root(const std::string& root, const s
     if (relative_path.front() == '/') {
         return refused(relative_path, "the path is absolute", "give it relative to the root " + root);
     }
+    constexpr std::string_view outside_remedy = "move the file under the root, or give another --root";
+    if (climbs_out(relative_path))
+        return refused(place, "it lies outside the root " + root, std::string(outside_remedy));
     const std::string real_root = resolved(root);
     if (real_root.empty()) return refused(root, "there is no such folder", "give --root a folder that exists");
     const std::unique_ptr<char, void (*)(void*)> real(realpath((real_root + "/" + relative_path).c_str(), nullptr),
@@ -140,7 +160,7 @@ Outcome<std::string> DiskFiles::read_under_root(const std::string& root, const s
     const std::string prefix = real_root == "/" ? real_root : real_root + "/";
     if (real_path.size() <= prefix.size() || real_path.compare(0, prefix.size(), prefix) != 0) {
         return refused(place, "it lies outside the root " + root + (real_path == real_root ? "" : ", at " + real_path),
-                       "move the file under the root, or give another --root");
+                       std::string(outside_remedy));
     }
     auto file = open_without_links(place, real_root, std::string_view(real_path).substr(prefix.size()), cap_bytes);
     if (!file) return file.error();

@@ -33,8 +33,12 @@ public:
         if (found == contents.end())
             return Error{ErrorKind::input, path, "there is no such file",
                          "check the path; it is taken from the current folder"};
-        if (found->second.size() > cap_bytes)
-            return Error{ErrorKind::input, path, "it is too large", "is it the file that was meant?"};
+        if (found->second.size() > cap_bytes) {
+            return Error{ErrorKind::input, path,
+                         "it has " + std::to_string(found->second.size()) + " bytes, the most allowed are " +
+                             std::to_string(cap_bytes) + "; it was not read",
+                         "is it the file that was meant?"};
+        }
         return found->second;
     }
     Outcome<std::string> read_under_root(const std::string& root, const std::string& relative_path,

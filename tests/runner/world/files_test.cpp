@@ -110,7 +110,6 @@ TEST_CASE("files: under a root, links are followed as long as they stay inside",
     put(root + "/taps.txt", "1\n");
     put(root + "/sub/more.txt", "2\n");
     put(folder / "outside.txt", "3\n");
-    put(folder / "rootless.txt", "4\n");
     REQUIRE(symlink("sub/more.txt", (root + "/inner").c_str()) == 0);
     REQUIRE(symlink((root + "/taps.txt").c_str(), (root + "/sub/absolute").c_str()) == 0);
     REQUIRE(symlink("../outside.txt", (root + "/outer").c_str()) == 0);
@@ -134,11 +133,12 @@ TEST_CASE("files: under a root, links are followed as long as they stay inside",
         return refused.error().problem;
     };
     const std::string outside = "it lies outside the root " + root + ", at " + folder / "outside.txt";
-    CHECK(problem("../outside.txt") == outside);
+    CHECK(problem("../outside.txt") == "it lies outside the root " + root);
+    CHECK(problem("../missing.txt") == "it lies outside the root " + root);
+    CHECK(problem("sub/./../../root/taps.txt") == "it lies outside the root " + root);
     CHECK(problem("outer") == outside);
     CHECK(problem("up/outside.txt") == outside);
-    CHECK(problem("sub/../../outside.txt") == outside);
-    CHECK(problem("../rootless.txt") == "it lies outside the root " + root + ", at " + folder / "rootless.txt");
+    CHECK(problem("sub/../../outside.txt") == "it lies outside the root " + root);
     CHECK(problem(folder / "outside.txt") == "the path is absolute");
     CHECK(problem(root + "/taps.txt") == "the path is absolute");
     CHECK(problem("") == "the path is empty");
