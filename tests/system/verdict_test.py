@@ -1,0 +1,125 @@
+"""The main job on the virtual board: a healthy board passes, each fault is refused by the rule that should see it."""
+import unittest
+
+from support import MOVING_AVERAGE, NOISE, STEP, Case, main
+import support
+
+FIR = """[[filter]]
+kind = "fir"
+taps_file = "{taps}"
+coefficient_fraction_bits = 15
+"""
+
+
+class Verdicts(Case):
+    def run_with(self, *options, cases=NOISE, **plan):
+        with self.virtual_board(*options):
+            done = self.check(self.plan(cases, **plan), self.rig())
+        return done, self.record()
+
+    def verdicts(self, record, case=0):
+        return {rule["kind"]: rule["verdict"] for rule in record["cases"][case]["rules"]}
+
+    def test_a_healthy_board_passes_and_the_record_is_whole(self):
+        done, record = self.run_with(cases=NOISE + STEP)
+        self.assert_status(done, 0)
+        self.assertEqual(done.err, "")
+        self.assertIn("2 pass, 0 fail, 0 invalid, 0 undecided, 0 not run", done.out)
+        self.assertIn("firmware not verified", done.out)
+        self.assertTrue(record["finished"])
+        self.assertEqual([case["grade"] for case in record["cases"]], ["proven", "proven"])
+        self.assertEqual(record["cases"][0]["stream"]["received_samples"], 6000)
+        self.assertTrue((self.folder / "run" / record["cases"][0]["capture"]["file"]).is_file(), record["cases"][0])
+
+    def test_the_capture_is_what_an_integer_model_says(self):
+        import numpy as np
+
+        _, record = self.run_with(cases=STEP)
+        capture = np.load(self.folder / "run" / record["cases"][0]["capture"]["file"])
+        step = np.where(np.arange(600) >= 10, 16384, 0)
+        running = np.convolve(step, np.ones(16, dtype=int))[:600]
+        np.testing.assert_array_equal(capture, (running + 8) >> 4)
+        self.assertEqual(capture.dtype, np.dtype("<i2"))
+
+    def test_truncation_fails_the_error_rule_and_shows_the_first_bad_sample(self):
+        done, record = self.run_with("--fault", "A01")
+        self.assert_status(done, 1)
+        self.assertEqual(self.verdicts(record), {"error": "fail", "latency": "pass"})
+        self.assertIn("first bad sample: ", done.out)
+        self.assertIn("rerun: halflsb check ", done.out)
+        self.assertIn("plan.toml:", done.out)
+
+    def test_a_late_sample_fails_latency_alone(self):
+        done, record = self.run_with("--fault", "S01")
+        self.assert_status(done, 1)
+        self.assertEqual(self.verdicts(record), {"error": "pass", "latency": "fail"})
+        self.assertIn("judged at the measured lag of 1 sample", done.out)
+
+    def test_each_fault_of_a_moving_average_is_refused(self):
+        for fault in ("A02", "A05", "A10", "S02", "S11", "S20", "N04", "N06", "D01", "D03", "D04", "C05"):
+            with self.subTest(fault):
+                self.link.unlink(missing_ok=True)
+                done, record = self.run_with("--fault", fault)
+                self.assert_status(done, 1)
+                self.assertEqual(self.verdicts(record)["error"], "fail")
+                self.cleanup_run()
+
+    def test_a_reset_that_does_nothing_is_seen_in_the_second_case(self):
+        for fault in ("S06", "S07"):
+            with self.subTest(fault):
+                done, record = self.run_with("--fault", fault, cases=NOISE + NOISE.replace('"noise"\n[', '"again"\n['))
+                self.assert_status(done, 1)
+                self.assertEqual([case["verdict"] for case in record["cases"]], ["pass", "fail"])
+                self.cleanup_run()
+
+    def test_a_response_rule_sees_a_wider_window(self):
+        rule = '[[rule]]\nkind = "response"\nbands = [{ from_hz = 74.7, to_hz = 75.3, max_db = -40.0 }]\n'
+        noise = NOISE.replace("6000", "40960")
+        done, _ = self.run_with(cases=noise, rules=rule)
+        self.assert_status(done, 0)
+        self.cleanup_run()
+        done, record = self.run_with("--fault", "S02", cases=noise, rules=rule)
+        self.assert_status(done, 1)
+        self.assertEqual(self.verdicts(record)["response"], "fail")
+
+    def test_the_same_seed_gives_the_same_run_and_another_seed_another(self):
+        import numpy as np
+
+        captures = []
+        for seed in (1, 1, 2):
+            with self.virtual_board():
+                self.assert_status(self.check(self.plan(NOISE), self.rig(), "--seed", seed), 0)
+            record = self.record()
+            self.assertEqual(record["seed"], seed)
+            captures.append(np.load(self.folder / "run" / record["cases"][0]["capture"]["file"]))
+            self.cleanup_run()
+        np.testing.assert_array_equal(captures[0], captures[1])
+        self.assertFalse(np.array_equal(captures[0], captures[2]))
+
+    def test_one_case_can_be_chosen_by_name_or_pattern(self):
+        with self.virtual_board():
+            done = self.check(self.plan(NOISE + STEP), self.rig(), "--case", "st*")
+        self.assert_status(done, 0)
+        self.assertEqual([case["name"] for case in self.record()["cases"]], ["step"])
+
+    def test_every_sample_format_of_the_board_travels(self):
+        """The board's own float and 32-bit filters, against the same design."""
+        listed = support.subprocess.run([str(support.VIRTUAL_BOARD), "--help"], capture_output=True, text=True).stdout
+        self.assertIn("--link", listed)
+        with self.virtual_board():
+            plan = self.plan(NOISE, board_filter="settle-q31", filter_text=self.settle(30),
+                             rules='[[rule]]\nkind = "error"\nmax_lsb = 200.0\n').read_text().replace('"q15"', '"q31"')
+            done = self.check(self.write("plan.toml", plan), self.rig())
+        self.assert_status(done, 0)
+
+    def settle(self, bits):
+        numbers = (support.ROOT / "rigs/filters/coefficients/settle.txt").read_text().split()
+        rows = [numbers[i:i + 5] for i in range(0, len(numbers), 5)]
+        return '[[filter]]\nkind = "biquad-cascade"\nsections = [' + ", ".join("[" + ", ".join(row) + "]" for row in rows) + f"]\ncoefficient_fraction_bits = {bits}\n"
+
+    def cleanup_run(self):
+        support.shutil.rmtree(self.folder / "run", ignore_errors=True)
+
+
+if __name__ == "__main__":
+    main()
