@@ -1,4 +1,5 @@
-// Step and impulse: a level from at_samples on, or in that one sample.
+// Step and impulse: a level from at_samples on, or in that one sample. Their spectrum is empty: they
+// are transients, with too little power in any one band to estimate a response from.
 #include <algorithm>
 
 #include "stimuli/shape.hpp"

@@ -108,8 +108,8 @@ TEST_CASE("chirp: the linear phase is a closed form", "[stimuli]") {
 }
 
 TEST_CASE("chirp: swept down it is the upward sweep read backwards", "[stimuli]") {
-    // phase_down(N - m) - phase_down(N) = -phase_up(m), so with the end phase a whole number of turns
-    // (here N (f0 + f1) / 2r = 4096 * 0.25 and 6000 / 48000 ln ... is not, so linear only) the values negate.
+    // phase_down(N - m) = phase_down(N) - phase_up(m), and the linear end phase N (f0 + f1) / 2r is
+    // 4096 / 4 here, whole turns, so the values are each other's negatives.
     const auto up = made("chirp", {{"length_samples", std::int64_t{4096}}, {"from_hz", 3000.0}, {"to_hz", 21000.0}});
     const auto down = made("chirp", {{"length_samples", std::int64_t{4096}}, {"from_hz", 21000.0}, {"to_hz", 3000.0}});
     const auto rising = ratios_of(*up, 0, 4096);
