@@ -1,4 +1,5 @@
 """rigs/cortex-m4/emulate: a line that can be opened again and again, and an end that leaves nothing behind."""
+import fcntl
 import os
 import pathlib
 import select
@@ -8,6 +9,7 @@ import struct
 import subprocess
 import sys
 import tempfile
+import termios
 import time
 import tty
 import unittest
@@ -15,6 +17,7 @@ import unittest
 import support
 from support import EMULATE, emulator
 
+TIOCGEXCL = 0x80045440  # "is it claimed?"; the termios module has no name for it
 ALL_BYTES = bytes(range(256))
 
 
@@ -91,6 +94,19 @@ class Emulate(unittest.TestCase):
             # A line that nobody holds open costs a second each time it is opened.
             self.assertLess(time.monotonic() - started, 10.0)
 
+    def test_a_line_claimed_by_one_host_is_free_for_the_next(self):
+        def is_claimed(line):
+            return struct.unpack("i", fcntl.ioctl(line, TIOCGEXCL, bytes(4)))[0] != 0
+
+        with emulator("halflsb-echo.elf") as path:
+            seen = os.open(path, os.O_RDONLY | os.O_NOCTTY | os.O_NONBLOCK)
+            self.addCleanup(os.close, seen)
+            host = os.open(path, os.O_RDWR | os.O_NOCTTY | os.O_NONBLOCK)
+            fcntl.ioctl(host, termios.TIOCEXCL)
+            self.assertTrue(is_claimed(seen))
+            os.close(host)
+            self.assertTrue(wait_until(lambda: not is_claimed(seen)))
+
     def test_a_signal_stops_it_and_leaves_neither_process_nor_link(self):
         for number in (signal.SIGTERM, signal.SIGINT, signal.SIGHUP):
             with self.subTest(number.name):
@@ -102,12 +118,12 @@ class Emulate(unittest.TestCase):
                 self.assertEqual(self.mine(), set())
                 self.assertFalse(os.path.lexists(self.link))
 
-    def test_a_signal_while_the_board_starts_is_not_lost(self):
-        process = self.start()
-        self.assertTrue(wait_until(lambda: len(self.mine()) == 1))
+    def test_a_signal_while_it_waits_for_the_board_stops_it_at_once(self):
+        process = self.start("--wait-s", "60", image=self.silent_image())
+        self.assertTrue(wait_until(lambda: len(emulators(self.silent)) == 1))
         process.terminate()
-        self.assertEqual(process.wait(15), 0)
-        self.assertEqual(self.mine(), set())
+        self.assertEqual(process.wait(5), 0)
+        self.assertEqual(emulators(self.silent), set())
         self.assertFalse(os.path.lexists(self.link))
 
     def test_it_stops_within_three_seconds_when_nobody_reads_the_line(self):
@@ -170,9 +186,13 @@ class Emulate(unittest.TestCase):
         pathlib.Path(path).write_bytes(image)
         return path
 
-    def test_a_board_that_never_answers_is_given_up(self):
+    def silent_image(self):
         branch_to_itself = struct.pack("<IIH", 0x20020000, 0x08000009, 0xE7FE)
-        silent = self.image_with("silent.elf", branch_to_itself)
+        self.silent = self.image_with("silent.elf", branch_to_itself)
+        return self.silent
+
+    def test_a_board_that_never_answers_is_given_up(self):
+        silent = self.silent_image()
         self.refused("the board sent no answer to HELLO within 1 s, 0 bytes came", "--wait-s", "1", image=silent)
 
     def test_a_processor_that_cannot_start_is_reported(self):
