@@ -72,6 +72,8 @@ std::unique_ptr<Filter> make_filter(const FilterChain& chain);
 std::complex<double> response_at(const FilterChain& chain, double cycles_per_sample);
 std::vector<double> impulse_response(const FilterChain& chain, std::size_t length);
 /// Sum |h[n]| until the tail is below `tail` of the sum; for stable chains.
+/// Some 24 time constants of the slowest pole are run, at most 2^24 samples; what would come after
+/// those (poles within 2e-6 of the unit circle) is added as the rest of a geometric series.
 double l1_norm(const FilterChain& chain, double tail = 1e-12);
 /// The largest pole radius of the chain; 0 for FIR and moving average.
 double largest_pole_radius(const FilterChain& chain);

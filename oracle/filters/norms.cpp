@@ -32,7 +32,7 @@ public:
     double absolute_sum(std::int64_t samples) {
         double sum = 0.0;
         while (samples > 0) {
-            const auto count = static_cast<std::size_t>(std::min<std::int64_t>(samples, piece_.size()));
+            const auto count = static_cast<std::size_t>(std::min(samples, static_cast<std::int64_t>(piece_.size())));
             std::fill_n(piece_.begin(), count, 0.0);
             if (first_) piece_[0] = 1.0;
             first_ = false;
