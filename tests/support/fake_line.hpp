@@ -127,12 +127,20 @@ public:
         std::size_t taken = 0;
         while (taken < to_fill.size() && !arriving_.empty() && arriving_.front().at <= now) {
             Piece& piece = arriving_.front();
-            const std::size_t count = std::min(to_fill.size() - taken, piece.bytes.size() - piece.taken);
-            std::copy_n(piece.bytes.begin() + static_cast<std::ptrdiff_t>(piece.taken), count,
+            const std::size_t count = std::min(to_fill.size() - taken, piece.bytes);
+            std::copy_n(bytes_.begin() + static_cast<std::ptrdiff_t>(first_), count,
                         to_fill.begin() + static_cast<std::ptrdiff_t>(taken));
-            piece.taken += count;
+            piece.bytes -= count;
+            first_ += count;
             taken += count;
-            if (piece.taken == piece.bytes.size()) arriving_.pop_front();
+            if (piece.bytes == 0) arriving_.pop_front();
+        }
+        if (arriving_.empty()) {
+            bytes_.clear();
+            first_ = 0;
+        } else if (first_ > 2 * buffer_bytes) {
+            bytes_.erase(bytes_.begin(), bytes_.begin() + static_cast<std::ptrdiff_t>(first_));
+            first_ = 0;
         }
         return taken;
     }
@@ -145,8 +153,7 @@ private:
 
     struct Piece {
         Instant at;
-        Bytes bytes;
-        std::size_t taken = 0;
+        std::size_t bytes;
     };
 
     Duration byte_time() const { return Duration(10'000'000'000LL / baud_); }
@@ -160,7 +167,8 @@ private:
                 free_at_ = std::max(free_at_, now) + static_cast<std::int64_t>(part.size()) * byte_time();
             }
             last_at_ = std::max(last_at_, std::max(free_at_, now) + later_);
-            arriving_.push_back(Piece{last_at_, Bytes(part.begin(), part.end())});
+            bytes_.insert(bytes_.end(), part.begin(), part.end());
+            arriving_.push_back(Piece{last_at_, part.size()});
         }
         later_ = Duration::zero();
     }
@@ -170,7 +178,9 @@ private:
     bool fired_ = false;
     int transfers_ = 0;
     Bytes held_;
-    std::deque<Piece> arriving_;
+    std::deque<Piece> arriving_;  ///< stretches of bytes_ from first_ on
+    Bytes bytes_;
+    std::size_t first_ = 0;
     Instant free_at_{}, last_at_{};
     Duration later_{}, idle_{};
     std::minstd_rand random_{20261201};

@@ -93,9 +93,8 @@ public:
 
 private:
     void serve_peer() {
-        std::vector<std::byte> buffer(4096);
-        while (const std::size_t count = to_board.take(buffer, clock_.now())) {
-            const Bytes answer = peer_.receive(std::span(buffer).first(count));
+        while (const std::size_t count = to_board.take(buffer_, clock_.now())) {
+            const Bytes answer = peer_.receive(std::span(buffer_).first(count));
             to_host.put(answer, clock_.now());
         }
     }
@@ -110,6 +109,7 @@ private:
 
     FakeClock& clock_;
     Peer& peer_;
+    Bytes buffer_ = Bytes(4096);
     long baud_ = 0;
 };
 

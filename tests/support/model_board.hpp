@@ -116,11 +116,17 @@ public:
 
 private:
     static std::uint32_t crc_of(const std::vector<std::uint8_t>& bytes) {
+        static const std::vector<std::uint32_t> table = [] {
+            std::vector<std::uint32_t> entries;
+            for (std::uint32_t entry = 0; entry < 256; ++entry) {
+                std::uint32_t value = entry;
+                for (int k = 0; k < 8; ++k) value = (value & 1) != 0 ? (value >> 1) ^ 0xEDB88320U : value >> 1;
+                entries.push_back(value);
+            }
+            return entries;
+        }();
         std::uint32_t crc = 0xFFFFFFFF;
-        for (const std::uint8_t byte : bytes) {
-            crc ^= byte;
-            for (int k = 0; k < 8; ++k) crc = (crc & 1) != 0 ? (crc >> 1) ^ 0xEDB88320U : crc >> 1;
-        }
+        for (const std::uint8_t byte : bytes) crc = (crc >> 8) ^ table[(crc ^ byte) & 0xFF];
         return ~crc;
     }
 

@@ -9,8 +9,8 @@ using namespace halflsb::test;
 
 namespace {
 
-constexpr std::int64_t count = 1500;
-const std::vector<std::int64_t> resets{700};
+constexpr std::int64_t count = 1000;
+const std::vector<std::int64_t> resets{500};
 
 /// Longer than the patience of greeting, start, counters and stream together: beyond it is a hang.
 const Duration longest = seconds(120.0);

@@ -228,7 +228,7 @@ TEST_CASE("stream: the line never idles for want of work", "[wire][slow]") {
         bench.link.set_baud(baud);
         bench.board.credit_blocks = 4;
         REQUIRE(bench.open(0));
-        const std::int64_t count = 100'000;
+        const std::int64_t count = 40'000;
         const Streamed streamed = stream(bench.session(), count, bench.clock, {}, false);
         REQUIRE_FALSE(streamed.error);
         const double rate_hz = static_cast<double>(count) / to_seconds(bench.session().figures().streaming);
@@ -244,13 +244,14 @@ TEST_CASE("stream: slow lines are not taken for silent boards", "[wire]") {
         for (const int credit : {1, 64}) {
             CAPTURE(baud, credit);
             Bench bench;
+            bench.limits.block_samples = 64;
             bench.limits.greet = seconds(20.0);
             bench.board.credit_blocks = credit;
             bench.link.set_baud(baud);
             REQUIRE(bench.open(1));
-            const Streamed streamed = stream(bench.session(), 20'000, bench.clock);
+            const Streamed streamed = stream(bench.session(), 6'000, bench.clock);
             REQUIRE_FALSE(streamed.error);
-            CHECK(streamed.samples == summed(20'000));
+            CHECK(streamed.samples == summed(6'000));
             CHECK(bench.session().figures().resends == 0);
         }
     }
