@@ -38,7 +38,7 @@ void settle_common_latency(Plan& plan, const std::vector<Rule>& common, Problems
     for (Case& the_case : plan.cases) {
         for (Rule& rule : the_case.rules) {
             auto* latency = std::get_if<LatencyRule>(&rule.kind);
-            if (latency == nullptr || rule.position.line != written->position.line) continue;
+            if (latency == nullptr || place_of(rule.position) != place_of(written->position)) continue;
             is_asked = true;
             latency->implicit = !latency_evidence(plan, the_case).can_tell;
             is_told = is_told || !latency->implicit;
