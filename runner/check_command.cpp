@@ -22,7 +22,7 @@ public:
         : desk_(desk),
           style_(style_of(desk.terminal, Stream::out, options.colour)),
           error_style_(style_of(desk.terminal, Stream::err, options.colour)),
-          live_(desk.terminal, desk.clock) {}
+          live_(desk.terminal, desk.clock, !options.verbose) {}
 
     void warning(const std::string& text) override { err(wrapped(error_style_, "warning: " + text, 0)); }
     void starting(const RunResult& run) override { out(start_text(run, style_)); }

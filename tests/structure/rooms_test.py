@@ -19,7 +19,7 @@ ROOMS = {
     "oracle/judge": (["oracle/measure", "oracle/arithmetic"], []),
     "runner/world": (ORACLE + ["stimuli"], ["spdlog/", "os"]),
     "runner/link": (["runner/world", "stimuli"], ["boost/asio", "libserialport.h", "spdlog/", "os"]),
-    "runner/wire": (["runner/link"], ["boost/crc.hpp", "spdlog/"]),
+    "runner/wire": (["runner/link"], ["boost/crc.hpp", "spdlog/", "unistd.h"]),
     "runner/capture": (["runner/wire", "runner/world"], ["spdlog/"]),
     "runner/config": (ORACLE + ["runner/world"], ["toml++/", "spdlog/", "os"]),
     "runner/record": (["runner/world"], ["nlohmann/", "sha2.h", "spdlog/", "os"]),
