@@ -24,7 +24,8 @@ public:
     /// returns as soon as at least one byte has moved, or with {0, 0} when `deadline` passes.
     /// Either span may be empty. Errors (kind bench): the line is gone; kind interrupted: the user
     /// asked to stop (world/interrupt). After an error the link is only good for closing.
-    virtual Outcome<Moved> exchange(std::span<const std::byte> to_write, std::span<std::byte> to_fill, Instant deadline) = 0;
+    virtual Outcome<Moved> exchange(std::span<const std::byte> to_write, std::span<std::byte> to_fill,
+                                    Instant deadline) = 0;
 
     /// What a person calls it: "/dev/ttyUSB0 (usb:0403:6001) at 921600 baud".
     virtual std::string name() const = 0;

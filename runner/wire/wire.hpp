@@ -64,10 +64,12 @@ struct WireFigures {
 };
 
 struct WireLimits {
-    Duration greet = seconds(5.0);     ///< for the whole greeting; HELLO is repeated meanwhile
-    Duration answer = seconds(2.0);    ///< without any good frame while answers are due
-    Duration resend = seconds(0.25);   ///< without progress before sending again; 3 round trips of what is in flight are added, but two resends fit into `answer`
-    int block_samples = 256;           ///< asked for; less when the board holds less
+    Duration greet = seconds(5.0);   ///< for the whole greeting; HELLO is repeated meanwhile
+    Duration answer = seconds(2.0);  ///< without any good frame while answers are due
+    /// Without progress before sending again; 3 round trips of what is in flight are added, but two resends fit
+    /// into `answer`.
+    Duration resend = seconds(0.25);
+    int block_samples = 256;  ///< asked for; less when the board holds less
 };
 
 class Wire {
