@@ -40,7 +40,9 @@ public:
     }
     void ended(const RunResult& run) {
         live_.erase();
-        if (run.ended_by) err(error_text(*run.ended_by, error_style_));
+        // The summary tells it too: on one terminal once is enough, a log of standard error needs it.
+        const bool one_terminal = desk_.terminal.is_terminal(Stream::out) && desk_.terminal.is_terminal(Stream::err);
+        if (run.ended_by && (run.folder.empty() || !one_terminal)) err(error_text(*run.ended_by, error_style_));
         if (!run.folder.empty()) out(summary_text(run, style_));
     }
     /// Standard output could not be written: a report nobody got must not end in "pass".

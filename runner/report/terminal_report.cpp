@@ -155,7 +155,8 @@ std::string case_text(const RunResult& run, std::size_t index, const TextStyle& 
                 const std::string kind(kind_name(rule.rule));
                 std::string brief = rule_brief(rule);
                 if (brief.rfind(kind + " ", 0) == 0) brief.erase(0, kind.size() + 1);
-                briefs += wrapped(style, kind + ": pass" + (brief.empty() ? "" : ", " + brief), 2);
+                briefs += wrapped(style, kind + ": pass" + (brief.empty() ? "" : ", " + brief) +
+                                              (rule.reason.empty() ? "" : "; " + printable(rule.reason)), 2);
             } else {
                 out += rule_block(rule, run.signal, style);
             }

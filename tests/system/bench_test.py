@@ -53,7 +53,7 @@ class Bench(Case):
                 first.communicate()
 
     def test_a_silent_board(self):
-        self.expect_3(self.run_with("silent"), "no byte", "1.0 s")
+        self.expect_3(self.run_with("silent"), "awaited the board's greeting", "for 1.0 s; nothing came")
 
     def test_an_echo_instead_of_a_board(self):
         self.expect_3(self.run_with("echo-only"), "echo")
