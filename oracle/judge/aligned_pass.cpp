@@ -102,6 +102,8 @@ RuleVerdict AlignedPass::error_verdict(const ErrorRuleState& state) const {
     told(rule.largest, "max", figures.largest);
     told(rule.rms, "rms", figures.rms);
     told(rule.bias, "bias", rule.bias ? std::abs(figures.bias) : figures.bias);
+    // The limit holds for the magnitude; which way the firmware leans is the first thing its author asks.
+    if (rule.bias && figures.bias < 0.0) verdict.figures.back().note = "negative";
     if (rule.min_snr_db || figures.snr_db) {
         JudgedFigure snr{"snr", std::nullopt, std::nullopt, std::nullopt, "dB", true, true, {}};
         if (figures.snr_db) snr.value = judged(*figures.snr_db);
