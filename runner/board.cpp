@@ -50,12 +50,15 @@ Outcome<bool> runs_already(const Rig& rig, const Image& image, const Clock& cloc
 }  // namespace
 
 Outcome<std::size_t> agreeing_filter(const Greeting& greeting, const Signal& signal, const std::string& port) {
-    const auto refuse = [&](std::string problem, std::string remedy) { return Error{ErrorKind::bench, port, std::move(problem), std::move(remedy)}; };
+    const auto refuse = [&](std::string problem, std::string remedy) {
+        return Error{ErrorKind::bench, port, std::move(problem), std::move(remedy)};
+    };
     std::size_t number = greeting.filters.size();
     if (signal.filter.empty()) {
         if (greeting.filters.size() != 1) {
-            return refuse("the board has " + std::to_string(greeting.filters.size()) + " filters: " + filter_names(greeting),
-                          "name the one the plan is about: filter = \"...\" in [signal]");
+            return refuse(
+                "the board has " + std::to_string(greeting.filters.size()) + " filters: " + filter_names(greeting),
+                "name the one the plan is about: filter = \"...\" in [signal]");
         }
         number = 0;
     } else {
@@ -69,13 +72,17 @@ Outcome<std::size_t> agreeing_filter(const Greeting& greeting, const Signal& sig
     }
     const BoardFilter& filter = greeting.filters[number];
     const auto differs = [&](const std::string& what, std::string_view board, std::string_view plan) {
-        return refuse("filter \"" + filter.name + "\" has " + what + " " + std::string(board) + ", the plan says " + std::string(plan),
-                      "the plan's [signal] states facts of the firmware: correct it, or flash the firmware it is about");
+        return refuse(
+            "filter \"" + filter.name + "\" has " + what + " " + std::string(board) + ", the plan says " +
+                std::string(plan),
+            "the plan's [signal] states facts of the firmware: correct it, or flash the firmware it is about");
     };
     if (!(filter.input == signal.input)) return differs("input", filter.input.name, signal.input.name);
     if (!(filter.output == signal.output)) return differs("output", filter.output.name, signal.output.name);
     if (filter.channels_in != 1 || filter.channels_out != 1) {
-        return differs("channels", std::to_string(filter.channels_in) + " in, " + std::to_string(filter.channels_out) + " out", "1 in, 1 out");
+        return differs("channels",
+                       std::to_string(filter.channels_in) + " in, " + std::to_string(filter.channels_out) + " out",
+                       "1 in, 1 out");
     }
     return number;
 }
@@ -96,7 +103,8 @@ Outcome<Board> open_board(const Rig& rig, const Signal& signal, const std::optio
         firmware.before_run_skipped = skip;
         if (!skip) {
             for (const auto& command : rig.before_run) {
-                auto ran = run_command(with_image(command, image ? image->file : ""), rig.folder, seconds(rig.before_run_limit_s), clock);
+                auto ran = run_command(with_image(command, image ? image->file : ""), rig.folder,
+                                       seconds(rig.before_run_limit_s), clock);
                 if (!ran) return ran.error();
             }
         }
@@ -107,7 +115,9 @@ Outcome<Board> open_board(const Rig& rig, const Signal& signal, const std::optio
         const std::string& build_id = board->greeting.build_id;
         if (build_id != image->build_id) {
             return Error{ErrorKind::bench, board->link->name(),
-                         "the board runs " + (build_id.empty() ? "a firmware without a build-id" : "build-id " + build_id) + ", " + image->file + " is " + image->build_id,
+                         "the board runs " +
+                             (build_id.empty() ? "a firmware without a build-id" : "build-id " + build_id) + ", " +
+                             image->file + " is " + image->build_id,
                          "flash it: the old firmware must not be signed for the new one"};
         }
         firmware.state = FirmwareCheck::State::agrees;
@@ -125,7 +135,8 @@ Outcome<void> greet_again(Board& board, const Rig& rig, const Clock& clock) {
     const std::string& name = board.greeting.filters[board.filter_number].name;
     if (greeting->build_id != board.greeting.build_id || greeting->serial != board.greeting.serial ||
         board.filter_number >= greeting->filters.size() || greeting->filters[board.filter_number].name != name) {
-        return Error{ErrorKind::bench, board.link->name(), "another board or firmware answers than at the start", "what was reconnected or flashed meanwhile?"};
+        return Error{ErrorKind::bench, board.link->name(), "another board or firmware answers than at the start",
+                     "what was reconnected or flashed meanwhile?"};
     }
     board.greeting = std::move(*greeting);
     return {};

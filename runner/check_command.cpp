@@ -32,7 +32,8 @@ public:
         out(board_text(run, wire_s, style_));
     }
     void progress(std::size_t place, std::int64_t samples_done, std::int64_t samples_total) override {
-        live_.update({place, names_.size(), names_[place - 1], samples_done, samples_total, to_seconds(desk_.clock.now() - case_started_)});
+        live_.update({place, names_.size(), names_[place - 1], samples_done, samples_total,
+                      to_seconds(desk_.clock.now() - case_started_)});
     }
     void finished(const RunResult& run) override {
         case_started_ = desk_.clock.now();
@@ -73,11 +74,13 @@ Outcome<RunRequest> read_request(const Options& options, const Desk& desk, std::
     auto plan = read_plan(options.plan, desk.files, {options.root.value_or(""), options.seed});
     auto rig = read_rig(options.rig, desk.files);
     if (auto* wrong = std::get_if<ReadProblems>(&plan)) problems = std::move(wrong->texts);
-    if (auto* wrong = std::get_if<ReadProblems>(&rig)) problems.insert(problems.end(), wrong->texts.begin(), wrong->texts.end());
+    if (auto* wrong = std::get_if<ReadProblems>(&rig))
+        problems.insert(problems.end(), wrong->texts.begin(), wrong->texts.end());
     if (!problems.empty()) return request;
     request.plan = std::move(std::get<Plan>(plan));
     request.rig = std::move(std::get<Rig>(rig));
-    for (const auto& [path, text] : {std::pair{&options.plan, &request.plan_text}, std::pair{&options.rig, &request.rig_text}}) {
+    for (const auto& [path, text] :
+         {std::pair{&options.plan, &request.plan_text}, std::pair{&options.rig, &request.rig_text}}) {
         auto read = desk.files.read(*path, largest_config_bytes);
         if (!read) return read.error();
         *text = std::move(*read);
@@ -93,9 +96,11 @@ Outcome<RunRequest> read_request(const Options& options, const Desk& desk, std::
         // Commands run in the rig's folder: a relative path would mean another file there.
         request.image = Image{desk.files.resolved(*options.image), *build_id};
     } else if (wants_image(request.rig)) {
-        return Error{ErrorKind::usage, options.rig, "before_run needs {image}, and there is no --image", "give the image to flash: --image FIRMWARE.elf"};
+        return Error{ErrorKind::usage, options.rig, "before_run needs {image}, and there is no --image",
+                     "give the image to flash: --image FIRMWARE.elf"};
     }
-    if (auto warning = rig_in_repository_warning(options.rig, options.plan, desk.files)) request.warnings.push_back(*warning);
+    if (auto warning = rig_in_repository_warning(options.rig, options.plan, desk.files))
+        request.warnings.push_back(*warning);
     request.out = options.out;
     request.seed = options.seed;
     request.root = options.root;
@@ -107,7 +112,8 @@ Outcome<RunRequest> read_request(const Options& options, const Desk& desk, std::
 int check_command(const Options& options, const Desk& desk) {
     std::vector<std::string> problems;
     const auto request = read_request(options, desk, problems);
-    for (const std::string& problem : problems) (void)desk.terminal.write(Stream::err, problem + (problem.ends_with('\n') ? "" : "\n"));
+    for (const std::string& problem : problems)
+        (void)desk.terminal.write(Stream::err, problem + (problem.ends_with('\n') ? "" : "\n"));
     if (!problems.empty()) return exit_status_of(Error{ErrorKind::input, "", "", ""});
     if (!request) return tell(request.error(), options, desk);
     if (auto watching = watch_for_interrupts(); !watching) return tell(watching.error(), options, desk);

@@ -28,7 +28,8 @@ int ports_command(const Desk& desk) {
     const TextStyle style = style_of(desk.terminal, Stream::out, ColourWish::automatic);
     Table table{{{"device", false, 0}, {"stable name", false, 0}, {"description", false, 1}}, {}, 0};
     for (const PortInfo& port : *ports) {
-        table.rows.push_back({printable(port.device), port.stable_name.empty() ? "-" : printable(port.stable_name), printable(port.description)});
+        table.rows.push_back({printable(port.device), port.stable_name.empty() ? "-" : printable(port.stable_name),
+                              printable(port.description)});
     }
     const auto written = desk.terminal.write(Stream::out, laid_out(style, table));
     return written ? 0 : tell(written.error(), {}, desk);

@@ -26,9 +26,12 @@ int main(int argc, char** argv) {
     if (!diagnostics) return tell(diagnostics.error(), options, desk);
 
     switch (options.command) {
-        case Command::check: return check_command(options, desk);
-        case Command::predict: return predict_command(options, desk);
-        case Command::ports: return ports_command(desk);
+        case Command::check:
+            return check_command(options, desk);
+        case Command::predict:
+            return predict_command(options, desk);
+        case Command::ports:
+            return ports_command(desk);
     }
     return tell({ErrorKind::defect, "", "a command without code", ""}, options, desk);
 }

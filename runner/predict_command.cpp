@@ -11,8 +11,8 @@
 #include "runner/config/plan_file.hpp"
 #include "runner/config/rig_file.hpp"
 #include "runner/report/people.hpp"
-#include "runner/world/printable.hpp"
 #include "runner/wire/wire_cost.hpp"
+#include "runner/world/printable.hpp"
 
 namespace halflsb {
 namespace {
@@ -40,27 +40,36 @@ std::optional<double> corner_hz(const FilterChain& chain, double rate_hz) {
 std::string filter_text(const Plan& plan, const TextStyle& style) {
     const FilterChain declared = declared_chain(plan.filter);
     const double rate_hz = plan.signal.rate_hz;
-    std::string text = "filter   " + std::to_string(plan.filter.size()) + (plan.filter.size() == 1 ? " stage" : " stages");
-    text += ", largest pole radius " + number_text(largest_pole_radius(plan.filter), 6);
-    text += ", sum of |h| " + number_text(l1_norm(plan.filter)) + "\n";
+    std::string text =
+        "filter   " + std::to_string(plan.filter.size()) + (plan.filter.size() == 1 ? " stage" : " stages");
+    text += ", largest pole radius " + rounded_text(largest_pole_radius(plan.filter), 6);
+    text += ", sum of |h| " + rounded_text(l1_norm(plan.filter)) + "\n";
     const auto corner = corner_hz(plan.filter, rate_hz);
     text += "         gain at 0 Hz " + decibels(gain_db(response_at(plan.filter, 0.0))) + " dB";
-    if (corner) text += ", 3 dB less at " + number_text(*corner) + " Hz";
+    if (corner) text += ", 3 dB less at " + rounded_text(*corner) + " Hz";
     text += "\n\n";
-    Table table{{{"Hz", true, 0}, {"cycles/sample", true, 1}, {"design dB", true, 0}, {"declared dB", true, 0}, {"phase deg", true, 2}}, {}, 2};
+    Table table{{{"Hz", true, 0},
+                 {"cycles/sample", true, 1},
+                 {"design dB", true, 0},
+                 {"declared dB", true, 0},
+                 {"phase deg", true, 2}},
+                {},
+                2};
     constexpr int per_decade = 6, points = 19;
     for (int point = -1; point < points; ++point) {
-        const double cycles_per_sample = point < 0 ? 0.0 : 0.5 * std::pow(10.0, static_cast<double>(point - points + 1) / per_decade);
+        const double cycles_per_sample =
+            point < 0 ? 0.0 : 0.5 * std::pow(10.0, static_cast<double>(point - points + 1) / per_decade);
         const auto design = response_at(plan.filter, cycles_per_sample);
         constexpr double degrees = 180.0 / 3.14159265358979323846;
-        table.rows.push_back({number_text(cycles_per_sample * rate_hz), number_text(cycles_per_sample), decibels(gain_db(design)),
-                              decibels(gain_db(response_at(declared, cycles_per_sample))),
+        table.rows.push_back({rounded_text(cycles_per_sample * rate_hz), rounded_text(cycles_per_sample),
+                              decibels(gain_db(design)), decibels(gain_db(response_at(declared, cycles_per_sample))),
                               std::abs(design) > 0.0 ? fixed_text(std::arg(design) * degrees, 1) : "-"});
     }
     return text + laid_out(style, table);
 }
 
-std::string cases_text(const Plan& plan, const std::vector<std::size_t>& selected, const std::optional<Rig>& rig, const TextStyle& style) {
+std::string cases_text(const Plan& plan, const std::vector<std::size_t>& selected, const std::optional<Rig>& rig,
+                       const TextStyle& style) {
     Table table{{{"case", false, 0}, {"samples", true, 0}, {"latency", false, 2}, {"wire s", true, 0}}, {}, 2};
     double total_s = 0.0;
     std::int64_t total_samples = 0;
@@ -70,16 +79,20 @@ std::string cases_text(const Plan& plan, const std::vector<std::size_t>& selecte
         total_samples += samples;
         std::string wire = "-";
         if (rig) {
-            const double wire_s = wire_seconds(wire_cost(samples, rig->block_samples, plan.signal.input.word_bytes(), plan.signal.output.word_bytes()), rig->baud);
+            const double wire_s = wire_seconds(
+                wire_cost(samples, rig->block_samples, plan.signal.input.word_bytes(), plan.signal.output.word_bytes()),
+                rig->baud);
             total_s += wire_s;
             wire = fixed_text(wire_s, 2);
         }
-        table.rows.push_back({printable(the_case.name), std::to_string(samples), latency_evidence(plan, the_case).can_tell ? "told" : "not told", wire});
+        table.rows.push_back({printable(the_case.name), std::to_string(samples),
+                              latency_evidence(plan, the_case).can_tell ? "told" : "not told", wire});
     }
     table.rows.push_back({"all", std::to_string(total_samples), "", rig ? fixed_text(total_s, 2) : "-"});
     std::string text = laid_out(style, table);
     if (rig) {
-        text += "  on the wire: " + std::to_string(rig->baud) + " baud, blocks of " + std::to_string(rig->block_samples) + " samples, busier direction\n";
+        text += "  on the wire: " + std::to_string(rig->baud) + " baud, blocks of " +
+                std::to_string(rig->block_samples) + " samples, busier direction\n";
     } else {
         text += "  with --rig RIG the time on the wire is told\n";
     }
@@ -101,7 +114,8 @@ int predict_command(const Options& options, const Desk& desk) {
             rig = std::move(std::get<Rig>(read));
         }
     }
-    for (const std::string& problem : problems) (void)desk.terminal.write(Stream::err, problem + (problem.ends_with('\n') ? "" : "\n"));
+    for (const std::string& problem : problems)
+        (void)desk.terminal.write(Stream::err, problem + (problem.ends_with('\n') ? "" : "\n"));
     if (!problems.empty()) return exit_status_of(Error{ErrorKind::input, "", "", ""});
     const Plan& known = std::get<Plan>(plan);
     std::vector<std::string> names;
@@ -111,7 +125,8 @@ int predict_command(const Options& options, const Desk& desk) {
 
     const TextStyle style = style_of(desk.terminal, Stream::out, options.colour);
     std::string text = printable(known.title) + " (" + printable(known.file) + "), on paper\n";
-    text += "signal   " + number_text(known.signal.rate_hz, 6) + " Hz, " + std::string(known.signal.input.name) + " in, " + std::string(known.signal.output.name) + " out\n";
+    text += "signal   " + rounded_text(known.signal.rate_hz, 6) + " Hz, " + std::string(known.signal.input.name) +
+            " in, " + std::string(known.signal.output.name) + " out\n";
     text += filter_text(known, style) + "\n" + cases_text(known, *selected, rig, style);
     const auto written = desk.terminal.write(Stream::out, text);
     return written ? 0 : tell(written.error(), options, desk);

@@ -15,7 +15,10 @@ namespace halflsb {
 namespace {
 
 std::string shell_quoted(const std::string& word) {
-    const auto plain = [](char c) { return std::isalnum(static_cast<unsigned char>(c)) != 0 || std::string_view("_-./:=@+,").find(c) != std::string_view::npos; };
+    const auto plain = [](char c) {
+        return std::isalnum(static_cast<unsigned char>(c)) != 0 ||
+               std::string_view("_-./:=@+,").find(c) != std::string_view::npos;
+    };
     if (!word.empty() && std::all_of(word.begin(), word.end(), plain)) return word;
     std::string quoted = "'";
     for (const char c : word) quoted += c == '\'' ? std::string("'\\''") : std::string(1, c);
@@ -23,7 +26,8 @@ std::string shell_quoted(const std::string& word) {
 }
 
 std::string rerun_command(const RunRequest& request, const std::string& case_name) {
-    std::string command = "halflsb check " + shell_quoted(request.plan.file) + " --rig " + shell_quoted(request.rig.file) + " --case " + shell_quoted(case_name);
+    std::string command = "halflsb check " + shell_quoted(request.plan.file) + " --rig " +
+                          shell_quoted(request.rig.file) + " --case " + shell_quoted(case_name);
     if (request.seed) command += " --seed " + std::to_string(*request.seed);
     if (request.root) command += " --root " + shell_quoted(*request.root);
     if (request.image) command += " --image " + shell_quoted(request.image->file);
@@ -57,7 +61,8 @@ Outcome<CaseResult> run_and_record(const RunRequest& request, std::size_t index,
     const std::string file = capture_file_name(index + 1, the_case.name);
     auto recorder = Recorder::open(files, folder.path_of(file), request.plan.signal.output);
     if (!recorder) return recorder.error();
-    auto result = run_case({request.plan, the_case, index + 1, place, board.filter_number, *board.wire, board.link->baud(), *recorder, clock, observer});
+    auto result = run_case({request.plan, the_case, index + 1, place, board.filter_number, *board.wire,
+                            board.link->baud(), *recorder, clock, observer});
     if (!result || recorder->samples() == 0) {
         recorder->discard();
     } else {
@@ -82,7 +87,8 @@ Outcome<void> run_cases(const RunRequest& request, RunResult& run, RunFolder& fo
     std::optional<double> wire_s;
     if (const long baud = board->link->baud(); baud > 0) {
         const Signal& signal = request.plan.signal;
-        wire_s = wire_seconds(wire_cost(samples, run.board.block_samples, signal.input.word_bytes(), signal.output.word_bytes()), baud);
+        wire_s = wire_seconds(
+            wire_cost(samples, run.board.block_samples, signal.input.word_bytes(), signal.output.word_bytes()), baud);
     }
     observer.greeted(run, wire_s);
 
@@ -91,7 +97,8 @@ Outcome<void> run_cases(const RunRequest& request, RunResult& run, RunFolder& fo
         if (board_lost) {
             if (auto again = greet_again(*board, request.rig, clock); !again) return again;
         }
-        auto result = run_and_record(request, request.selected[place - 1], place, *board, folder, files, clock, observer);
+        auto result =
+            run_and_record(request, request.selected[place - 1], place, *board, folder, files, clock, observer);
         if (!result) return result.error();
         board_lost = result->verdict == CaseVerdict::invalid;
         run.cases.push_back(std::move(*result));

@@ -20,12 +20,12 @@ struct RunRequest {
     std::string tool_version;
     Plan plan;
     Rig rig;
-    std::string plan_text, rig_text;     ///< of both files, for the record
-    std::vector<std::size_t> selected;   ///< indices of the plan's cases, ascending
+    std::string plan_text, rig_text;    ///< of both files, for the record
+    std::vector<std::size_t> selected;  ///< indices of the plan's cases, ascending
     std::optional<Image> image;
-    std::optional<std::string> out;      ///< folder of the run
-    std::optional<std::uint64_t> seed;   ///< as given on the command line
-    std::optional<std::string> root;     ///< likewise
+    std::optional<std::string> out;     ///< folder of the run
+    std::optional<std::uint64_t> seed;  ///< as given on the command line
+    std::optional<std::string> root;    ///< likewise
     std::vector<std::string> warnings;
 };
 

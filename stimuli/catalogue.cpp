@@ -1,6 +1,7 @@
 // The table of all shapes, and how a name becomes a stimulus.
 #include <cmath>
 
+#include "stimuli/number_text.hpp"
 #include "stimuli/shape.hpp"
 
 namespace halflsb {

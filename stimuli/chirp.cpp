@@ -8,6 +8,7 @@
 #include <algorithm>
 
 #include "stimuli/exact_math.hpp"
+#include "stimuli/number_text.hpp"
 #include "stimuli/shape.hpp"
 
 namespace halflsb {

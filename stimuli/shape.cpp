@@ -2,6 +2,8 @@
 
 #include <algorithm>
 
+#include "stimuli/number_text.hpp"
+
 namespace halflsb {
 
 std::vector<Parameter> placement_parameters(LevelSign sign, double default_level_ratio, std::string_view level_help) {

@@ -3,6 +3,7 @@
 #include <cmath>
 
 #include "stimuli/exact_math.hpp"
+#include "stimuli/number_text.hpp"
 #include "stimuli/philox.hpp"
 #include "stimuli/shape.hpp"
 

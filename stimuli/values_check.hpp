@@ -14,7 +14,4 @@ namespace halflsb {
 /// unknown choice, an empty array. The place is the parameter's name, the kind is input.
 std::optional<Error> misfit_of(const Recipe& recipe, const ParameterValues& values);
 
-/// The shortest decimal text that reads back as the same number, whatever the locale.
-std::string number_text(double value);
-
 }  // namespace halflsb

@@ -33,12 +33,14 @@ void check_latency(const Plan& plan, const Case& the_case, const Rule& rule, std
     const LatencyEvidence evidence = latency_evidence(plan, the_case);
     if (evidence.can_tell) return;
     Refusal refusal{rule.position, {}, {}};
-    refusal.problem = "case \"" + the_case.name + "\" cannot tell its latency: a lag of " + std::to_string(evidence.hardest_lag) +
-                      " would leave a squared residual of " + brief(evidence.smallest_ratio) + " sigma^2, below " + brief(latency_evidence_ratio);
-    refusal.remedy = noise_can_tell(plan, the_case)
-                         ? "give it noise (shape = \"noise\", level_ratio = 0.5, length_samples = " + std::to_string(noise_length_samples) +
-                               "), or write the rule in another case"
-                         : "no stimulus of this filter tells it within these error limits; tighten rms_lsb or leave the rule out";
+    refusal.problem = "case \"" + the_case.name + "\" cannot tell its latency: a lag of " +
+                      std::to_string(evidence.hardest_lag) + " would leave a squared residual of " +
+                      brief(evidence.smallest_ratio) + " sigma^2, below " + brief(latency_evidence_ratio);
+    refusal.remedy =
+        noise_can_tell(plan, the_case)
+            ? "give it noise (shape = \"noise\", level_ratio = 0.5, length_samples = " +
+                  std::to_string(noise_length_samples) + "), or write the rule in another case"
+            : "no stimulus of this filter tells it within these error limits; tighten rms_lsb or leave the rule out";
     refusals.push_back(std::move(refusal));
 }
 
@@ -47,19 +49,27 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
     const Spectrum spectrum = stimulus.spectrum();
     const std::string noise = "use noise or a chirp over that band";
     if (spectrum.tones.empty() && spectrum.to_cycles_per_sample <= 0.0) {
-        refusals.push_back({rule.position, "case \"" + the_case.name + "\" cannot answer a response rule: a " + the_case.shape + " has no flat power", "use noise, a chirp, a sine or a multitone"});
+        refusals.push_back(
+            {rule.position,
+             "case \"" + the_case.name + "\" cannot answer a response rule: a " + the_case.shape + " has no flat power",
+             "use noise, a chirp, a sine or a multitone"});
         return;
     }
     const std::int64_t length = stimulus.length_samples();
     if (!tones_resolved(spectrum.tones, length)) {
-        refusals.push_back({rule.position, "case \"" + the_case.name + "\" is too short to keep its tones apart: " + std::to_string(length) + " samples",
-                            "tones must be 4 cycles apart over the record, and as far from 0 and Nyquist: lengthen it"});
+        refusals.push_back(
+            {rule.position,
+             "case \"" + the_case.name + "\" is too short to keep its tones apart: " + std::to_string(length) +
+                 " samples",
+             "tones must be 4 cycles apart over the record, and as far from 0 and Nyquist: lengthen it"});
         return;
     }
     constexpr std::int64_t shortest_samples = 64;
     if (spectrum.tones.empty() && length < shortest_samples) {
-        refusals.push_back({rule.position, "case \"" + the_case.name + "\" is too short for a response: " + std::to_string(length) + " samples",
-                            "give it at least " + std::to_string(shortest_samples)});
+        refusals.push_back(
+            {rule.position,
+             "case \"" + the_case.name + "\" is too short for a response: " + std::to_string(length) + " samples",
+             "give it at least " + std::to_string(shortest_samples)});
         return;
     }
     for (const ResponseBand& band : std::get<ResponseRule>(rule.kind).bands) {
@@ -72,7 +82,9 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
         } else {
             remedy += ", or a multitone with a tone in it";
         }
-        refusals.push_back({rule.position, "the stimulus of case \"" + the_case.name + "\" says nothing about the band " + band_text, remedy});
+        refusals.push_back({rule.position,
+                            "the stimulus of case \"" + the_case.name + "\" says nothing about the band " + band_text,
+                            remedy});
     }
 }
 

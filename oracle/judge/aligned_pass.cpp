@@ -19,7 +19,10 @@ JudgedFigure at_most(std::string name, double value, double limit, std::string u
 }  // namespace
 
 AlignedPass::AlignedPass(const Plan& plan, const Case& the_case, int lag_samples)
-    : plan_(plan), case_(the_case), lag_(lag_samples), to_skip_(lag_samples < 0 ? static_cast<std::size_t>(-lag_samples) : 0) {
+    : plan_(plan),
+      case_(the_case),
+      lag_(lag_samples),
+      to_skip_(lag_samples < 0 ? static_cast<std::size_t>(-lag_samples) : 0) {
     const double step = plan.signal.output.has_lsb() ? lsb_value(plan.signal.output) : 1.0;
     bool wants_response = false;
     for (const Rule& rule : the_case.rules) {
@@ -48,7 +51,8 @@ void AlignedPass::add(const ReferenceBlock& reference, std::span<const Code> res
     const auto skip = std::min(to_skip_, reference.codes.size());
     to_skip_ -= skip;
     const auto append = [skip](auto& waiting, auto fresh) {
-        if (!fresh.empty()) waiting.insert(waiting.end(), fresh.begin() + static_cast<std::ptrdiff_t>(skip), fresh.end());
+        if (!fresh.empty())
+            waiting.insert(waiting.end(), fresh.begin() + static_cast<std::ptrdiff_t>(skip), fresh.end());
     };
     append(codes_, reference.codes);
     append(stimulus_, reference.stimulus);
@@ -69,8 +73,9 @@ void AlignedPass::add(const ReferenceBlock& reference, std::span<const Code> res
     drop(response_);
 }
 
-void AlignedPass::measure(std::span<const Code> codes, std::span<const double> stimulus, std::span<const double> declared,
-                          std::span<const double> design, std::span<const Code> response) {
+void AlignedPass::measure(std::span<const Code> codes, std::span<const double> stimulus,
+                          std::span<const double> declared, std::span<const double> design,
+                          std::span<const Code> response) {
     response_values_.resize(response.size());
     values_of(plan_.signal.output, response, response_values_);
     for (ErrorRuleState& state : error_rules_) {
@@ -94,9 +99,17 @@ RuleVerdict AlignedPass::error_verdict(const ErrorRuleState& state) const {
         const Limit::In in = limit ? limit->in : natural_unit(plan_.signal);
         const double worth = worth_of(in, plan_.signal);
         if (limit) {
-            verdict.figures.push_back(at_most(std::move(name), value / worth, limit->number, unit_name(in, plan_.signal)));
+            verdict.figures.push_back(
+                at_most(std::move(name), value / worth, limit->number, unit_name(in, plan_.signal)));
         } else {
-            verdict.figures.push_back({std::move(name), judged(value / worth), std::nullopt, std::nullopt, unit_name(in, plan_.signal), false, true, {}});
+            verdict.figures.push_back({std::move(name),
+                                       judged(value / worth),
+                                       std::nullopt,
+                                       std::nullopt,
+                                       unit_name(in, plan_.signal),
+                                       false,
+                                       true,
+                                       {}});
         }
     };
     told(rule.largest, "max", figures.largest);
@@ -125,11 +138,13 @@ RuleVerdict AlignedPass::error_verdict(const ErrorRuleState& state) const {
         verdict.reason = "no sample was compared";
         return verdict;
     }
-    const bool passed = std::all_of(verdict.figures.begin(), verdict.figures.end(), [](const JudgedFigure& f) { return f.passed; });
+    const bool passed =
+        std::all_of(verdict.figures.begin(), verdict.figures.end(), [](const JudgedFigure& f) { return f.passed; });
     verdict.verdict = passed ? Verdict::pass : Verdict::fail;
     if (figures.identical) verdict.reason = "every sample equals the reference";
     if (figures.beyond > 0) {
-        verdict.reason = std::to_string(figures.beyond) + " of " + std::to_string(figures.samples) + " samples beyond max";
+        verdict.reason =
+            std::to_string(figures.beyond) + " of " + std::to_string(figures.samples) + " samples beyond max";
     }
     // The measure compares unrounded, the verdict rounded figures: a pass shows no bad sample.
     if (passed) verdict.first_bad.reset();

@@ -21,12 +21,21 @@ bool has_response_rule(const Case& the_case) {
 }
 
 RuleVerdict latency_verdict(const Rule& rule, int measured, int expected, Verdict verdict, std::string reason) {
-    JudgedFigure figure{"latency", static_cast<double>(measured), static_cast<double>(expected), std::nullopt, "samples", false, verdict != Verdict::fail, {}};
+    JudgedFigure figure{"latency",
+                        static_cast<double>(measured),
+                        static_cast<double>(expected),
+                        std::nullopt,
+                        "samples",
+                        false,
+                        verdict != Verdict::fail,
+                        {}};
     if (verdict == Verdict::undecided) figure.value.reset();
     return {rule, verdict, "declared", {figure}, std::move(reason), std::nullopt};
 }
 
-std::string samples_text(int count) { return std::to_string(count) + (count == 1 || count == -1 ? " sample" : " samples"); }
+std::string samples_text(int count) {
+    return std::to_string(count) + (count == 1 || count == -1 ? " sample" : " samples");
+}
 
 }  // namespace
 
@@ -40,7 +49,8 @@ CaseJudge::CaseJudge(const Plan& plan, const Case& the_case)
       pass_(plan, the_case, expected_lag_),
       lag_(lag_window_for(the_case.stimulus->length_samples()), expected_lag_),
       discrimination_(lag_window_for(the_case.stimulus->length_samples())),
-      evidence_needed_(latency_evidence_ratio * latency_sigma(the_case, plan.signal) * latency_sigma(the_case, plan.signal)) {}
+      evidence_needed_(latency_evidence_ratio * latency_sigma(the_case, plan.signal) *
+                       latency_sigma(the_case, plan.signal)) {}
 
 void CaseJudge::add(std::span<const Code> response) {
     while (!response.empty()) {
@@ -64,7 +74,8 @@ Outcome<CaseJudgement> CaseJudge::finish(const ResponseReplay& replay) {
     std::optional<RuleVerdict> latency;
     if (!judgement.latency_told) {
         if (latency_rule_ != nullptr && !std::get<LatencyRule>(latency_rule_->kind).implicit) {
-            latency = latency_verdict(*latency_rule_, 0, expected_lag_, Verdict::undecided, "this stimulus cannot tell the latency");
+            latency = latency_verdict(*latency_rule_, 0, expected_lag_, Verdict::undecided,
+                                      "this stimulus cannot tell the latency");
         }
     } else {
         const LagFigures lags = lag_.value();
@@ -114,7 +125,8 @@ LatencyEvidence latency_evidence(const Plan& plan, const Case& the_case) {
     LagDiscrimination discrimination(lag_window_for(length));
     ReferenceSource reference(plan, the_case, false);
     LatencyEvidence evidence;
-    for (std::int64_t first = 0; first < length && !evidence.can_tell; first += static_cast<std::int64_t>(pass_block_samples)) {
+    for (std::int64_t first = 0; first < length && !evidence.can_tell;
+         first += static_cast<std::int64_t>(pass_block_samples)) {
         const auto count = std::min<std::int64_t>(static_cast<std::int64_t>(pass_block_samples), length - first);
         discrimination.add(reference.next(static_cast<std::size_t>(count)).declared);
         evidence.smallest_ratio = discrimination.smallest() / (sigma * sigma);

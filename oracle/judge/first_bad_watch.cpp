@@ -22,14 +22,16 @@ void FirstBadWatch::add(std::int64_t first_index, std::span<const Code> stimulus
         found_->index = first_beyond;
         // The recent ones reach further back than needed when the bad sample is inside the block.
         const std::int64_t from = std::max<std::int64_t>(first_beyond - neighbours, 0);
-        const auto drop = std::clamp<std::int64_t>(from - found_->first_index, 0, static_cast<std::int64_t>(found_->stimulus.size()));
+        const auto drop =
+            std::clamp<std::int64_t>(from - found_->first_index, 0, static_cast<std::int64_t>(found_->stimulus.size()));
         found_->stimulus.erase(found_->stimulus.begin(), found_->stimulus.begin() + drop);
         found_->response.erase(found_->response.begin(), found_->response.begin() + drop);
         found_->reference.erase(found_->reference.begin(), found_->reference.begin() + drop);
         found_->first_index = found_->stimulus.empty() ? -1 : found_->first_index + drop;
         take(*found_, from, first_beyond + neighbours + 1);
     } else if (found_) {
-        take(*found_, found_->first_index + static_cast<std::int64_t>(found_->stimulus.size()), found_->index + neighbours + 1);
+        take(*found_, found_->first_index + static_cast<std::int64_t>(found_->stimulus.size()),
+             found_->index + neighbours + 1);
     } else {
         // Across small blocks the last `neighbours` samples may span several of them.
         Neighbourhood joined = recent_;

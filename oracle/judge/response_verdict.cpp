@@ -33,7 +33,8 @@ struct Extreme {
 
 JudgedFigure held(const Extreme& extreme, double limit_db, bool at_least, const ResponseBand& band) {
     JudgedFigure figure;
-    figure.name = std::string(at_least ? "lowest" : "highest") + " gain from " + hz_text(band.from_hz) + " to " + hz_text(band.to_hz);
+    figure.name = std::string(at_least ? "lowest" : "highest") + " gain from " + hz_text(band.from_hz) + " to " +
+                  hz_text(band.to_hz);
     figure.limit = judged(limit_db);
     figure.unit = "dB";
     figure.at_least = at_least;
@@ -67,7 +68,8 @@ std::vector<double> answerable_hz(const ResponseBand& band, const Stimulus& stim
     const std::size_t segment = response_segment_for(stimulus.length_samples());
     for (std::size_t bin = 0; bin <= segment / 2; ++bin) {
         const double cycles_per_sample = static_cast<double>(bin) / static_cast<double>(segment);
-        if (within(cycles_per_sample * rate_hz, band) && has_power(spectrum, cycles_per_sample)) found.push_back(cycles_per_sample * rate_hz);
+        if (within(cycles_per_sample * rate_hz, band) && has_power(spectrum, cycles_per_sample))
+            found.push_back(cycles_per_sample * rate_hz);
     }
     return found;
 }
@@ -80,7 +82,8 @@ RuleVerdict judge_response(const ResponseRule& rule, const Rule& asked, const Pl
         std::optional<Extreme> lowest, highest;
         for (const ResponsePoint& point : points) {
             const double hz = point.cycles_per_sample * plan.signal.rate_hz;
-            if (!within(hz, band) || (spectrum.tones.empty() && !has_power(spectrum, point.cycles_per_sample))) continue;
+            if (!within(hz, band) || (spectrum.tones.empty() && !has_power(spectrum, point.cycles_per_sample)))
+                continue;
             const std::complex<double> design = response_at(plan.filter, point.cycles_per_sample);
             double measured_db = gain_db(design + point.difference);
             if (rule.relative_to_design) measured_db -= gain_db(design);

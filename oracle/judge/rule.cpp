@@ -3,22 +3,13 @@
 #include <cmath>
 
 #include "oracle/measure/lag.hpp"
+#include "stimuli/number_text.hpp"
 
 namespace halflsb {
 namespace {
 
 Error refuse(std::string parameter, std::string problem, std::string remedy) {
     return {ErrorKind::input, std::move(parameter), std::move(problem), std::move(remedy)};
-}
-
-std::string shown(double number) {
-    std::string text = std::to_string(number);
-    while (text.find('.') != std::string::npos && (text.back() == '0' || text.back() == '.')) {
-        const bool point = text.back() == '.';
-        text.pop_back();
-        if (point) break;
-    }
-    return text;
 }
 
 struct LimitWords {
@@ -33,16 +24,19 @@ Outcome<std::optional<Limit>> read_limit(const ParameterValues& values, const Re
                                          const RuleContext& context) {
     std::optional<Limit> limit;
     std::string_view seen;
-    for (const auto& [name, in] : {std::pair{words.lsb, Limit::In::lsb}, std::pair{words.ratio, Limit::In::full_scale_ratio},
-                                   std::pair{words.unit, Limit::In::unit}}) {
+    for (const auto& [name, in] :
+         {std::pair{words.lsb, Limit::In::lsb}, std::pair{words.ratio, Limit::In::full_scale_ratio},
+          std::pair{words.unit, Limit::In::unit}}) {
         const auto number = values.number(recipe, name);
         if (!number) continue;
         if (limit) {
-            return refuse(std::string(name), "the same limit is given twice, as " + std::string(seen) + " and as " + std::string(name),
+            return refuse(std::string(name),
+                          "the same limit is given twice, as " + std::string(seen) + " and as " + std::string(name),
                           "keep one of the two");
         }
         if (in == Limit::In::lsb && !context.output_has_lsb) {
-            return refuse(std::string(name), "an f32 output has no LSB", "use " + std::string(words.ratio) + " or " + std::string(words.unit));
+            return refuse(std::string(name), "an f32 output has no LSB",
+                          "use " + std::string(words.ratio) + " or " + std::string(words.unit));
         }
         if (in == Limit::In::unit && !context.full_scale_unit) {
             return refuse(std::string(name), "nothing says what full scale is worth in the unit",
@@ -52,7 +46,8 @@ Outcome<std::optional<Limit>> read_limit(const ParameterValues& values, const Re
                               : in == Limit::In::full_scale_ratio ? 1.0
                                                                   : std::fabs(*context.full_scale_unit);
         if (!(*number <= widest)) {
-            return refuse(std::string(name), shown(*number) + " is wider than full scale (" + shown(widest) + ")",
+            return refuse(std::string(name),
+                          number_text(*number) + " is wider than full scale (" + number_text(widest) + ")",
                           "a limit that wide judges nothing; give the error that the design allows");
         }
         limit = Limit{*number, in};
@@ -63,7 +58,8 @@ Outcome<std::optional<Limit>> read_limit(const ParameterValues& values, const Re
 
 Outcome<Rule> make_error_rule(const ParameterValues& values, const Recipe& recipe, const RuleContext& context) {
     ErrorRule rule;
-    for (const auto& [words, target] : {std::pair{largest_words, &rule.largest}, std::pair{rms_words, &rule.rms}, std::pair{bias_words, &rule.bias}}) {
+    for (const auto& [words, target] : {std::pair{largest_words, &rule.largest}, std::pair{rms_words, &rule.rms},
+                                        std::pair{bias_words, &rule.bias}}) {
         auto limit = read_limit(values, recipe, words, context);
         if (!limit) return limit.error();
         *target = *limit;
@@ -87,25 +83,32 @@ Outcome<Rule> make_response_rule(const ParameterValues& values, const Recipe& re
     rule.relative_to_design = values.text(recipe, "relative_to") == "design";
     const double nyquist_hz = context.rate_hz / 2.0;
     for (const auto& row : values.rows("bands")) {
-        if (row.size() != 4) return refuse("bands", "a band has four numbers", "give from_hz, to_hz and min_db or max_db");
+        if (row.size() != 4)
+            return refuse("bands", "a band has four numbers", "give from_hz, to_hz and min_db or max_db");
         ResponseBand band{row[0], row[1], std::nullopt, std::nullopt};
-        const std::string name = shown(band.from_hz) + " to " + shown(band.to_hz) + " Hz";
+        const std::string name = number_text(band.from_hz) + " to " + number_text(band.to_hz) + " Hz";
         if (!(band.from_hz >= 0.0) || !(band.to_hz >= band.from_hz)) {
-            return refuse("bands", "the band " + name + " runs backwards", "from_hz must be at least 0 and at most to_hz");
+            return refuse("bands", "the band " + name + " runs backwards",
+                          "from_hz must be at least 0 and at most to_hz");
         }
         if (!(band.to_hz <= nyquist_hz)) {
-            return refuse("bands", "the band " + name + " ends above Nyquist (" + shown(nyquist_hz) + " Hz)", "end it at " + shown(nyquist_hz) + " Hz or below");
+            return refuse("bands", "the band " + name + " ends above Nyquist (" + number_text(nyquist_hz) + " Hz)",
+                          "end it at " + number_text(nyquist_hz) + " Hz or below");
         }
         if (std::isfinite(row[2])) band.min_db = row[2];
         if (std::isfinite(row[3])) band.max_db = row[3];
-        if (!band.min_db && !band.max_db) return refuse("bands", "the band " + name + " has no limit", "give min_db, max_db or both");
+        if (!band.min_db && !band.max_db)
+            return refuse("bands", "the band " + name + " has no limit", "give min_db, max_db or both");
         if (band.min_db && band.max_db && !(*band.min_db <= *band.max_db)) {
-            return refuse("bands", "the limits of the band " + name + " cross: min_db " + shown(*band.min_db) + " is above max_db " + shown(*band.max_db),
+            return refuse("bands",
+                          "the limits of the band " + name + " cross: min_db " + number_text(*band.min_db) +
+                              " is above max_db " + number_text(*band.max_db),
                           "exchange them");
         }
         rule.bands.push_back(band);
     }
-    if (rule.bands.empty()) return refuse("bands", "a response rule without bands judges nothing", "give at least one band");
+    if (rule.bands.empty())
+        return refuse("bands", "a response rule without bands judges nothing", "give at least one band");
     return Rule{rule, {}};
 }
 
@@ -132,21 +135,49 @@ const std::vector<Recipe>& rule_recipes() {
              limit("bias_lsb", "LSB", "Mean of the error allowed, either sign."),
              limit("bias_ratio", "of full scale", "Mean of the error allowed, either sign."),
              limit("bias_unit", "unit", "Mean of the error allowed, either sign."),
-             {"min_snr_db", ParameterType::real, "dB", -no_limit, no_limit, false, std::nullopt, {},
+             {"min_snr_db",
+              ParameterType::real,
+              "dB",
+              -no_limit,
+              no_limit,
+              false,
+              std::nullopt,
+              {},
               "Power of the reference over power of the error, at least; an exact match passes."},
          }},
         {"latency",
          "Whole-sample delay of the response behind the reference; the filter's own delay is not latency.",
          {
-             {"latency_samples", ParameterType::integer, "samples", -lag_window_samples, lag_window_samples, true, std::nullopt, {},
+             {"latency_samples",
+              ParameterType::integer,
+              "samples",
+              -lag_window_samples,
+              lag_window_samples,
+              true,
+              std::nullopt,
+              {},
               "The delay that is right; every case without this rule is held to 0."},
          }},
         {"response",
          "Gain against limits in bands, from a noise, chirp, sine or multitone stimulus, judged against the design.",
          {
-             {"bands", ParameterType::bands, "", -no_limit, no_limit, true, std::nullopt, {},
+             {"bands",
+              ParameterType::bands,
+              "",
+              -no_limit,
+              no_limit,
+              true,
+              std::nullopt,
+              {},
               "Array of {from_hz, to_hz, min_db, max_db}; one of min_db and max_db may be left out."},
-             {"relative_to", ParameterType::choice, "", -no_limit, no_limit, false, std::nullopt, {"absolute", "design"},
+             {"relative_to",
+              ParameterType::choice,
+              "",
+              -no_limit,
+              no_limit,
+              false,
+              std::nullopt,
+              {"absolute", "design"},
               "Whether the limits hold for the gain itself or for its deviation from the design."},
          }},
     };
@@ -157,7 +188,8 @@ std::string_view kind_name(const Rule& rule) { return rule_recipes()[rule.kind.i
 
 Outcome<Rule> make_rule(std::string_view kind, const ParameterValues& values, const RuleContext& context) {
     const Recipe* recipe = find_recipe(rule_recipes(), kind);
-    if (recipe == nullptr) return refuse("kind", "there is no rule \"" + std::string(kind) + "\"", "use error, latency or response");
+    if (recipe == nullptr)
+        return refuse("kind", "there is no rule \"" + std::string(kind) + "\"", "use error, latency or response");
     if (kind == "error") return make_error_rule(values, *recipe, context);
     if (kind == "latency") return make_latency_rule(values, *recipe);
     return make_response_rule(values, *recipe, context);

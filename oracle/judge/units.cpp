@@ -7,9 +7,12 @@ namespace halflsb {
 
 double worth_of(Limit::In in, const Signal& signal) {
     switch (in) {
-        case Limit::In::lsb: return lsb_value(signal.output);
-        case Limit::In::full_scale_ratio: return full_scale_value(signal.output);
-        case Limit::In::unit: return full_scale_value(signal.output) / std::fabs(*signal.full_scale_unit);
+        case Limit::In::lsb:
+            return lsb_value(signal.output);
+        case Limit::In::full_scale_ratio:
+            return full_scale_value(signal.output);
+        case Limit::In::unit:
+            return full_scale_value(signal.output) / std::fabs(*signal.full_scale_unit);
     }
     return 1.0;
 }
@@ -18,9 +21,12 @@ double value_of(const Limit& limit, const Signal& signal) { return limit.number 
 
 std::string unit_name(Limit::In in, const Signal& signal) {
     switch (in) {
-        case Limit::In::lsb: return "LSB";
-        case Limit::In::full_scale_ratio: return "of full scale";
-        case Limit::In::unit: return signal.unit.empty() ? "unit" : signal.unit;
+        case Limit::In::lsb:
+            return "LSB";
+        case Limit::In::full_scale_ratio:
+            return "of full scale";
+        case Limit::In::unit:
+            return signal.unit.empty() ? "unit" : signal.unit;
     }
     return "";
 }
@@ -44,7 +50,8 @@ std::optional<double> allowed_rms(const Case& the_case, const Signal& signal) {
 }
 
 double latency_sigma(const Case& the_case, const Signal& signal) {
-    const double step = signal.output.has_lsb() ? lsb_value(signal.output) : std::ldexp(full_scale_value(signal.output), -24);
+    const double step =
+        signal.output.has_lsb() ? lsb_value(signal.output) : std::ldexp(full_scale_value(signal.output), -24);
     return std::max(step, allowed_rms(the_case, signal).value_or(0.0));
 }
 

@@ -8,28 +8,38 @@ namespace halflsb {
 
 std::string_view name_of(Verdict verdict) {
     switch (verdict) {
-        case Verdict::pass: return "pass";
-        case Verdict::undecided: return "undecided";
-        case Verdict::fail: return "fail";
+        case Verdict::pass:
+            return "pass";
+        case Verdict::undecided:
+            return "undecided";
+        case Verdict::fail:
+            return "fail";
     }
     return "";
 }
 
 std::string_view name_of(Grade grade) {
     switch (grade) {
-        case Grade::proven: return "proven";
-        case Grade::plausible: return "plausible";
-        case Grade::broken: return "broken";
+        case Grade::proven:
+            return "proven";
+        case Grade::plausible:
+            return "plausible";
+        case Grade::broken:
+            return "broken";
     }
     return "";
 }
 
 std::string_view name_of(CaseVerdict verdict) {
     switch (verdict) {
-        case CaseVerdict::pass: return "pass";
-        case CaseVerdict::undecided: return "undecided";
-        case CaseVerdict::invalid: return "invalid";
-        case CaseVerdict::fail: return "fail";
+        case CaseVerdict::pass:
+            return "pass";
+        case CaseVerdict::undecided:
+            return "undecided";
+        case CaseVerdict::invalid:
+            return "invalid";
+        case CaseVerdict::fail:
+            return "fail";
     }
     return "";
 }

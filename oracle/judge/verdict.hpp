@@ -26,7 +26,7 @@ std::string_view name_of(CaseVerdict verdict);
 /// One number held against one limit. Numbers are rounded to 9 significant digits before they are
 /// compared, so that a verdict does not hang on the last bits of a logarithm.
 struct JudgedFigure {
-    std::string name;  ///< "max", "rms", "bias", "snr", "latency", "gain at 50 Hz"
+    std::string name;             ///< "max", "rms", "bias", "snr", "latency", "gain at 50 Hz"
     std::optional<double> value;  ///< none: could not be measured (then `note` says why) or exact match
     std::optional<double> limit;
     std::optional<double> margin;  ///< distance to the limit, positive means room left
@@ -49,7 +49,8 @@ struct RuleVerdict {
     Verdict verdict = Verdict::undecided;
     std::string reference;  ///< "declared", "design"
     std::vector<JudgedFigure> figures;
-    std::string reason;  ///< of an undecided one; or what the reader should know ("judged at the measured lag of 1 sample")
+    std::string
+        reason;  ///< of an undecided one; or what the reader should know ("judged at the measured lag of 1 sample")
     std::optional<Neighbourhood> first_bad;
 };
 

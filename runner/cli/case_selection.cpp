@@ -2,7 +2,7 @@
 
 #include <algorithm>
 
-#include "runner/cli/nearest.hpp"
+#include "runner/world/nearest.hpp"
 #include "runner/world/printable.hpp"
 
 namespace halflsb {
@@ -56,7 +56,9 @@ Outcome<std::vector<std::size_t>> select_cases(const std::vector<std::string>& n
         }
         if (any) continue;
         std::string remedy;
-        if (const auto near = nearest_of(pattern, names)) remedy = "did you mean '" + printable(*near) + "'? ";
+        const std::vector<std::string_view> known(names.begin(), names.end());
+        if (const auto near = nearest_word(pattern, known); !near.empty())
+            remedy = "did you mean '" + printable(near) + "'? ";
         remedy += "The plan's cases are:";
         for (std::size_t i = 0; i < std::min(names.size(), most_names_listed); ++i)
             remedy += "\n    " + printable(names[i]);

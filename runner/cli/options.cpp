@@ -8,7 +8,7 @@
 
 #include "runner/cli/exit_status.hpp"
 #include "runner/cli/help.hpp"
-#include "runner/cli/nearest.hpp"
+#include "runner/world/nearest.hpp"
 #include "runner/world/printable.hpp"
 
 namespace halflsb {
@@ -47,11 +47,11 @@ std::string names_of(const std::vector<Command>& commands) {
 std::string word_of(const std::string& argument) { return argument.substr(0, argument.find('=')); }
 
 Error unknown_command(const std::string& word) {
-    std::vector<std::string> known;
-    for (const CommandSpec& command : command_table()) known.emplace_back(command.name);
-    const auto near = nearest_of(word, known);
+    std::vector<std::string_view> known;
+    for (const CommandSpec& command : command_table()) known.push_back(command.name);
+    const std::string near(nearest_word(word, known));
     return usage_error("there is no command '" + printable(word) + "'",
-                       near ? "did you mean '" + *near + "'?" : help_hint);
+                       near.empty() ? help_hint : "did you mean '" + near + "'?");
 }
 
 Error unknown_option(const std::string& argument, const CommandSpec* command) {
@@ -61,13 +61,13 @@ Error unknown_option(const std::string& argument, const CommandSpec* command) {
         return usage_error(word + " is not an option of " + std::string(command->name),
                            "it belongs to " + names_of(option->commands));
     }
-    std::vector<std::string> known{"--help", "--version"};
+    std::vector<std::string_view> known{"--help", "--version"};
     for (const OptionSpec& option : option_table()) {
-        if (command == nullptr || knows(option, command->command)) known.emplace_back(option.name);
+        if (command == nullptr || knows(option, command->command)) known.push_back(option.name);
     }
-    const auto near = nearest_of(word, known);
+    const std::string near(nearest_word(word, known));
     return usage_error("there is no option '" + printable(word) + "'",
-                       near ? "did you mean " + *near + "?" : help_hint);
+                       near.empty() ? help_hint : "did you mean " + near + "?");
 }
 
 /// What neither a command nor an option took.

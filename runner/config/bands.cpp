@@ -2,7 +2,7 @@
 
 #include <algorithm>
 
-#include "runner/config/shown_number.hpp"
+#include "stimuli/number_text.hpp"
 
 namespace halflsb {
 
@@ -13,7 +13,7 @@ struct Band {
     Place place;
 };
 
-std::string edges(const Band& band) { return shown_number(band.from_hz) + " to " + shown_number(band.to_hz) + " Hz"; }
+std::string edges(const Band& band) { return number_text(band.from_hz) + " to " + number_text(band.to_hz) + " Hz"; }
 
 std::optional<Band> read_band(const TomlValue& table, ReadContext& context) {
     TableReader reader(context, table, "a band");
@@ -29,7 +29,7 @@ std::optional<Band> read_band(const TomlValue& table, ReadContext& context) {
                       "exchange from_hz and to_hz");
     }
     if (context.nyquist_hz && !(band.to_hz <= *context.nyquist_hz)) {
-        const std::string nyquist = shown_number(*context.nyquist_hz) + " Hz";
+        const std::string nyquist = number_text(*context.nyquist_hz) + " Hz";
         reader.refuse(reader.place_of("to_hz"), "the band " + edges(band) + " ends above Nyquist, " + nyquist,
                       "end it at " + nyquist + " or below, or correct rate_hz");
     }
@@ -37,10 +37,10 @@ std::optional<Band> read_band(const TomlValue& table, ReadContext& context) {
         reader.refuse(table.place, "the band " + edges(band) + " has no limit", "give min_db, max_db or both");
     }
     if (!(band.min_db <= band.max_db)) {
-        reader.refuse(reader.place_of("min_db"),
-                      "the limits cross: min_db = " + shown_number(band.min_db) +
-                          " is above max_db = " + shown_number(band.max_db),
-                      "exchange them");
+        reader.refuse(
+            reader.place_of("min_db"),
+            "the limits cross: min_db = " + number_text(band.min_db) + " is above max_db = " + number_text(band.max_db),
+            "exchange them");
     }
     if (!reader.is_clean()) return std::nullopt;
     return band;
@@ -56,12 +56,12 @@ void refuse_contradictions(const std::vector<Band>& bands, Problems& problems) {
             const double min_db = std::max(bands[i].min_db, bands[j].min_db),
                          max_db = std::min(bands[i].max_db, bands[j].max_db);
             if (from_hz > to_hz || min_db <= max_db) continue;
-            const std::string shared = from_hz == to_hz ? "at " + shown_number(from_hz) + " Hz"
+            const std::string shared = from_hz == to_hz ? "at " + number_text(from_hz) + " Hz"
                                                         : "from " + edges({from_hz, to_hz, 0.0, 0.0, {}});
             problems.add(bands[i].place,
                          "this band and the one in line " + std::to_string(bands[j].place.line) +
-                             " contradict each other " + shared + ": at least " + shown_number(min_db) +
-                             " dB and at most " + shown_number(max_db) + " dB",
+                             " contradict each other " + shared + ": at least " + number_text(min_db) +
+                             " dB and at most " + number_text(max_db) + " dB",
                          "both edges belong to a band; move the bands apart, or correct a limit");
             return;
         }

@@ -4,7 +4,7 @@
 #include <cmath>
 
 #include "runner/config/reader.hpp"
-#include "runner/config/shown_number.hpp"
+#include "stimuli/number_text.hpp"
 
 namespace halflsb {
 

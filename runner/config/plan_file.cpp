@@ -8,7 +8,7 @@
 #include "runner/config/document.hpp"
 #include "runner/config/plan_reader.hpp"
 #include "runner/config/plan_words.hpp"
-#include "runner/config/shown_number.hpp"
+#include "stimuli/number_text.hpp"
 
 namespace halflsb {
 
@@ -146,7 +146,7 @@ std::optional<std::string> seed_problem(std::uint64_t seed) {
     for (const Recipe& recipe : stimulus_recipes()) {
         const Parameter* parameter = find_parameter(recipe, "seed");
         if (parameter != nullptr && !(static_cast<double>(seed) <= parameter->maximum)) {
-            return render_without_line("--seed", std::to_string(seed) + " is above " + shown_number(parameter->maximum),
+            return render_without_line("--seed", std::to_string(seed) + " is above " + number_text(parameter->maximum),
                                        "give a smaller seed");
         }
     }

@@ -1,7 +1,7 @@
 // [signal] and [[filter]] of a plan.
 #include "runner/config/plan_reader.hpp"
 #include "runner/config/plan_words.hpp"
-#include "runner/config/shown_number.hpp"
+#include "stimuli/number_text.hpp"
 
 namespace halflsb {
 

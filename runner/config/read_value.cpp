@@ -3,11 +3,11 @@
 #include <cmath>
 
 #include "runner/config/bands.hpp"
-#include "runner/config/nearest.hpp"
 #include "runner/config/number_file.hpp"
 #include "runner/config/reader.hpp"
-#include "runner/config/shown_number.hpp"
+#include "runner/world/nearest.hpp"
 #include "runner/world/printable.hpp"
+#include "stimuli/number_text.hpp"
 
 namespace halflsb {
 
@@ -20,7 +20,7 @@ std::string found_text(const TomlValue& value) {
         case TomlValue::Kind::integer:
             return "the whole number " + std::to_string(value.integer);
         case TomlValue::Kind::real:
-            return "the number " + shown_number(value.real) + (value.real == std::floor(value.real) ? ".0" : "");
+            return "the number " + number_text(value.real) + (value.real == std::floor(value.real) ? ".0" : "");
         case TomlValue::Kind::boolean:
             return value.boolean ? "true" : "false";
         default:
@@ -109,14 +109,14 @@ std::optional<double> number_of(const Parameter& parameter, const TomlValue& val
     }
     // Of an integer the text as written: a double may not hold it.
     const std::string shown =
-        value.kind == TomlValue::Kind::integer ? std::to_string(value.integer) : shown_number(number);
+        value.kind == TomlValue::Kind::integer ? std::to_string(value.integer) : number_text(number);
     if (!(number >= parameter.minimum)) {
-        context.problems.add(value.place, name + " = " + shown + " is below " + shown_number(parameter.minimum),
+        context.problems.add(value.place, name + " = " + shown + " is below " + number_text(parameter.minimum),
                              range_remedy(parameter, what));
         return std::nullopt;
     }
     if (!(number <= parameter.maximum)) {
-        context.problems.add(value.place, name + " = " + shown + " is above " + shown_number(parameter.maximum),
+        context.problems.add(value.place, name + " = " + shown + " is above " + number_text(parameter.maximum),
                              range_remedy(parameter, what));
         return std::nullopt;
     }
@@ -141,7 +141,7 @@ std::optional<std::string> text_of(const Parameter& parameter, const TomlValue& 
     const std::size_t length = columns_of(value.text);
     if (!(static_cast<double>(length) <= parameter.maximum)) {
         context.problems.add(value.place, name + " has " + std::to_string(length) + " characters",
-                             "give at most " + shown_number(parameter.maximum));
+                             "give at most " + number_text(parameter.maximum));
         return std::nullopt;
     }
     return value.text;
@@ -263,9 +263,9 @@ std::string range_text(const Parameter& parameter) {
     const bool below = std::isfinite(parameter.minimum), above = std::isfinite(parameter.maximum);
     const std::string unit = parameter.unit.empty() ? "" : " " + std::string(parameter.unit);
     if (below && above)
-        return "from " + shown_number(parameter.minimum) + " to " + shown_number(parameter.maximum) + unit;
-    if (below) return "of at least " + shown_number(parameter.minimum) + unit;
-    if (above) return "of at most " + shown_number(parameter.maximum) + unit;
+        return "from " + number_text(parameter.minimum) + " to " + number_text(parameter.maximum) + unit;
+    if (below) return "of at least " + number_text(parameter.minimum) + unit;
+    if (above) return "of at most " + number_text(parameter.maximum) + unit;
     return {};
 }
 

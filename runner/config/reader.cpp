@@ -2,7 +2,7 @@
 
 #include <algorithm>
 
-#include "runner/config/nearest.hpp"
+#include "runner/world/nearest.hpp"
 
 namespace halflsb {
 

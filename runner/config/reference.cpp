@@ -5,11 +5,11 @@
 #include "oracle/filters/filter.hpp"
 #include "oracle/judge/rule.hpp"
 #include "runner/config/bands.hpp"
-#include "runner/config/nearest.hpp"
 #include "runner/config/plan_words.hpp"
 #include "runner/config/reader.hpp"
 #include "runner/config/rig_words.hpp"
-#include "runner/config/shown_number.hpp"
+#include "runner/world/nearest.hpp"
+#include "stimuli/number_text.hpp"
 #include "stimuli/stimulus.hpp"
 
 namespace halflsb {
@@ -48,7 +48,7 @@ std::string type_text(const Parameter& parameter) {
 
 std::string default_text(const Parameter& parameter) {
     if (parameter.required) return "required";
-    if (parameter.default_value) return shown_number(*parameter.default_value);
+    if (parameter.default_value) return number_text(*parameter.default_value);
     if (parameter.type == ParameterType::choice && !parameter.choices.empty())
         return "`\"" + std::string(parameter.choices.front()) + "\"`";
     return "none";

@@ -11,9 +11,9 @@ namespace halflsb {
 namespace asio = boost::asio;
 using ErrorCode = boost::system::error_code;
 
-DescriptorLink::DescriptorLink(Descriptor line, std::string name, long baud, const Clock& clock)
+DescriptorLink::DescriptorLink(FileDescriptor line, std::string name, long baud, const Clock& clock)
     : line_(context_), interrupt_(context_), timer_(context_), name_(std::move(name)), baud_(baud), clock_(clock) {
-    line_.assign(line.get());
+    line_.assign(line.number());
     line.release();
     line_.non_blocking(true);
 }

@@ -2,7 +2,7 @@
 #pragma once
 
 #include "runner/link/asio.hpp"
-#include "runner/link/descriptor.hpp"
+#include "runner/world/file_descriptor.hpp"
 #include "runner/link/link.hpp"
 
 namespace halflsb {
@@ -11,7 +11,7 @@ class DescriptorLink final : public Link {
 public:
     /// Takes `line`, makes it non-blocking. `clock` must outlive the link. Throws std::system_error when the
     /// system has nothing left to watch it with: for the functions that open links, which return Errors.
-    DescriptorLink(Descriptor line, std::string name, long baud, const Clock& clock);
+    DescriptorLink(FileDescriptor line, std::string name, long baud, const Clock& clock);
     ~DescriptorLink() override;
 
     Outcome<Moved> exchange(std::span<const std::byte> to_write, std::span<std::byte> to_fill,

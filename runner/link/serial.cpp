@@ -14,7 +14,7 @@
 #include <cstring>
 #include <exception>
 
-#include "runner/link/descriptor.hpp"
+#include "runner/world/file_descriptor.hpp"
 #include "runner/link/descriptor_link.hpp"
 #include "runner/link/port_holder.hpp"
 #include "runner/link/ports.hpp"
@@ -113,24 +113,24 @@ Outcome<std::unique_ptr<Link>> open_serial(const SerialPort& port, const Clock& 
     }
     if (!S_ISCHR(status.st_mode)) return not_a_terminal(port.port);
     // Non-blocking, or the open waits for a carrier.
-    Descriptor line(open(path->c_str(), O_RDWR | O_NOCTTY | O_NONBLOCK | O_CLOEXEC));
+    FileDescriptor line(open(path->c_str(), O_RDWR | O_NOCTTY | O_NONBLOCK | O_CLOEXEC));
     if (!line.is_open()) {
         if (errno == EACCES || errno == EPERM) return no_permission(port.port, status);
         if (errno == EBUSY) return busy(port.port, status.st_rdev, -1);
         if (errno == ENOENT || errno == ENXIO || errno == ENODEV || errno == EIO) return missing(port.port, *path);
         return bench(port.port, "cannot be opened: " + system_text(errno), "");
     }
-    if (isatty(line.get()) == 0) return not_a_terminal(port.port);
+    if (isatty(line.number()) == 0) return not_a_terminal(port.port);
     // The lock comes before any setting: a port in use must not notice us.
-    if (flock(line.get(), LOCK_EX | LOCK_NB) != 0) return busy(port.port, status.st_rdev, line.get());
+    if (flock(line.number(), LOCK_EX | LOCK_NB) != 0) return busy(port.port, status.st_rdev, line.number());
 
     const std::string device = behind_links(*path);
     const Outcome<void> configured = is_pseudo_terminal(status)
-                                         ? configure_pseudo_terminal(port.port, line.get(), port.baud)
-                                         : configure_real_port(port.port, device, line.get(), port.baud);
+                                         ? configure_pseudo_terminal(port.port, line.number(), port.baud)
+                                         : configure_real_port(port.port, device, line.number(), port.baud);
     if (!configured) return configured.error();
-    ioctl(line.get(), TIOCEXCL);
-    tcflush(line.get(), TCIOFLUSH);
+    ioctl(line.number(), TIOCEXCL);
+    tcflush(line.number(), TCIOFLUSH);
 
     std::string name = port.port;
     if (device != *path || *path != port.port) name += " (" + device + ")";

@@ -30,7 +30,7 @@ void cut_trailing_zeros(std::string& text) {
 
 }  // namespace
 
-std::string number_text(double value, int digits) {
+std::string rounded_text(double value, int digits) {
     if (std::isnan(value)) return "not a number";
     if (std::isinf(value)) return value > 0 ? "infinite" : "-infinite";
     if (value == 0.0) return "0";
@@ -59,7 +59,7 @@ std::string fixed_text(double value, int decimals) {
 
 std::pair<std::string, std::string> compared_text(double value, double limit) {
     for (int digits = fewest_digits;; ++digits) {
-        std::pair<std::string, std::string> texts{number_text(value, digits), number_text(limit, digits)};
+        std::pair<std::string, std::string> texts{rounded_text(value, digits), rounded_text(limit, digits)};
         if (digits == most_digits || value == limit || texts.first != texts.second) return texts;
     }
 }
@@ -82,9 +82,9 @@ std::string counted(std::int64_t count, std::string_view singular, std::string_v
 std::string duration_text(double seconds) {
     if (!(seconds > 0.0)) return "0 s";
     // The bounds are where the next unit's rounding begins, so that "1000 ms" and "60 s" never show.
-    if (seconds < 0.0009995) return number_text(std::max(1.0, std::round(seconds * 1e6)), 3) + " us";
-    if (seconds < 0.9995) return number_text(seconds * 1e3, 3) + " ms";
-    if (seconds < 59.95) return number_text(seconds, 3) + " s";
+    if (seconds < 0.0009995) return rounded_text(std::max(1.0, std::round(seconds * 1e6)), 3) + " us";
+    if (seconds < 0.9995) return rounded_text(seconds * 1e3, 3) + " ms";
+    if (seconds < 59.95) return rounded_text(seconds, 3) + " s";
     const auto whole = static_cast<std::int64_t>(std::llround(std::min(seconds, 1e15)));
     if (whole < 3600) return std::to_string(whole / 60) + " min " + std::to_string(whole % 60) + " s";
     const std::int64_t minutes = (whole + 30) / 60;
@@ -92,7 +92,7 @@ std::string duration_text(double seconds) {
 }
 
 std::string rate_text(double rate_hz) {
-    return rate_hz >= 10e3 ? number_text(rate_hz / 1e3) + " kHz" : number_text(rate_hz) + " Hz";
+    return rate_hz >= 10e3 ? rounded_text(rate_hz / 1e3) + " kHz" : rounded_text(rate_hz) + " Hz";
 }
 
 }  // namespace halflsb

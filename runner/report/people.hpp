@@ -11,7 +11,7 @@ namespace halflsb {
 
 /// `value` to `digits` significant ones (1 to 17), trailing zeros cut: "0.499", "-0.01", "1250000",
 /// "1.2e-07". Whole numbers below 1e15 keep all their digits. Never "-0"; NaN is "not a number".
-std::string number_text(double value, int digits = 4);
+std::string rounded_text(double value, int digits = 4);
 
 /// `value` with exactly `decimals` digits after the point, for columns of a table.
 std::string fixed_text(double value, int decimals);

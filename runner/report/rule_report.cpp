@@ -39,7 +39,7 @@ bool note_fits_cell(const JudgedFigure& figure) {
 std::string measured_cell(const JudgedFigure& figure) {
     if (figure.value) {
         const std::string number =
-            figure.limit ? compared_text(*figure.value, *figure.limit).first : number_text(*figure.value);
+            figure.limit ? compared_text(*figure.value, *figure.limit).first : rounded_text(*figure.value);
         return with_unit(number, figure.unit);
     }
     if (note_fits_cell(figure)) return printable(figure.note);
@@ -51,7 +51,7 @@ std::string limit_cell(const JudgedFigure& figure, const Rule& rule, const TextS
     std::string sign = figure.at_least ? (style.unicode ? "≥ " : ">= ") : (style.unicode ? "≤ " : "<= ");
     if (std::holds_alternative<LatencyRule>(rule.kind)) sign = "= ";
     const std::string number =
-        figure.value ? compared_text(*figure.value, *figure.limit).second : number_text(*figure.limit);
+        figure.value ? compared_text(*figure.value, *figure.limit).second : rounded_text(*figure.limit);
     return sign + with_unit(number, figure.unit);
 }
 
@@ -74,7 +74,7 @@ std::string figure_table(const RuleVerdict& verdict, const TextStyle& style) {
         const std::string name = printable(figure->name);
         const std::string measured = measured_cell(*figure);
         const std::string limit = limit_cell(*figure, verdict.rule, style);
-        const std::string margin = figure->margin ? with_unit(number_text(*figure->margin), figure->unit) : "none";
+        const std::string margin = figure->margin ? with_unit(rounded_text(*figure->margin), figure->unit) : "none";
         std::string word = figure->passed ? "" : "fail";
         if (figure->value && note_fits_cell(*figure)) word += (word.empty() ? "" : ", ") + printable(figure->note);
         table.rows.push_back({name, measured, limit, margin, word});
@@ -110,7 +110,7 @@ std::string time_text(std::int64_t index, double rate_hz) {
 
 std::string code_cell(const std::vector<Code>& codes, std::size_t i, const SampleFormat& format) {
     if (i >= codes.size()) return "-";
-    return format.has_lsb() ? std::to_string(codes[i]) : number_text(value_of(format, codes[i]), 7);
+    return format.has_lsb() ? std::to_string(codes[i]) : rounded_text(value_of(format, codes[i]), 7);
 }
 
 Ink ink_of(Verdict verdict) {
@@ -177,11 +177,11 @@ std::string neighbour_table(const Neighbourhood& around, const Signal& signal, c
         std::string reference = "-", error = "-";
         if (i < around.reference.size()) {
             const double expected = around.reference[i];
-            reference = lsb ? fixed_text(expected, 3) : number_text(expected, 7);
+            reference = lsb ? fixed_text(expected, 3) : rounded_text(expected, 7);
             if (i < around.response.size()) {
                 const double got =
                     lsb ? static_cast<double>(around.response[i]) : value_of(signal.output, around.response[i]);
-                error = lsb ? fixed_text(got - expected, 3) : number_text(got - expected);
+                error = lsb ? fixed_text(got - expected, 3) : rounded_text(got - expected);
             }
         }
         table.rows.push_back({(index == around.index ? "> " : "") + std::to_string(index),

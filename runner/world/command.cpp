@@ -59,7 +59,8 @@ struct Child {
 Outcome<Child> start(const std::vector<std::string>& arguments, const std::string& folder) {
     std::array<int, 2> pipe_ends{};
     if (pipe2(pipe_ends.data(), O_CLOEXEC) != 0) {
-        return Error{ErrorKind::bench, joined(arguments), std::string("no pipe for its output: ") + std::strerror(errno), ""};
+        return Error{ErrorKind::bench, joined(arguments),
+                     std::string("no pipe for its output: ") + std::strerror(errno), ""};
     }
     posix_spawn_file_actions_t actions;
     posix_spawn_file_actions_init(&actions);
@@ -88,7 +89,8 @@ Outcome<Child> start(const std::vector<std::string>& arguments, const std::strin
     close(pipe_ends[1]);
     if (failed != 0) {
         close(pipe_ends[0]);
-        return Error{ErrorKind::bench, joined(arguments), std::string("cannot be started in ") + folder + ": " + std::strerror(failed),
+        return Error{ErrorKind::bench, joined(arguments),
+                     std::string("cannot be started in ") + folder + ": " + std::strerror(failed),
                      "commands run in the rig's folder; check the path and its run bit"};
     }
     child.output = pipe_ends[0];
@@ -126,7 +128,8 @@ int stop(const Child& child) {
 
 }  // namespace
 
-Outcome<void> run_command(const std::vector<std::string>& arguments, const std::string& folder, Duration limit, const Clock& clock) {
+Outcome<void> run_command(const std::vector<std::string>& arguments, const std::string& folder, Duration limit,
+                          const Clock& clock) {
     const std::string name = joined(arguments);
     spdlog::info("running {}", name);
     auto started = start(arguments, folder);
@@ -145,9 +148,13 @@ Outcome<void> run_command(const std::vector<std::string>& arguments, const std::
             // A daemon it left behind may hold the pipe open; only what is there now is read.
             if (open) drain(child.output, output);
             if (WIFSIGNALED(status)) {
-                result = Error{ErrorKind::bench, name, "died of signal " + std::to_string(WTERMSIG(status)) + "; " + output.tail(), "run it by hand in " + folder};
+                result = Error{ErrorKind::bench, name,
+                               "died of signal " + std::to_string(WTERMSIG(status)) + "; " + output.tail(),
+                               "run it by hand in " + folder};
             } else if (WEXITSTATUS(status) != 0) {
-                result = Error{ErrorKind::bench, name, "ended with status " + std::to_string(WEXITSTATUS(status)) + "; " + output.tail(), "run it by hand in " + folder};
+                result = Error{ErrorKind::bench, name,
+                               "ended with status " + std::to_string(WEXITSTATUS(status)) + "; " + output.tail(),
+                               "run it by hand in " + folder};
             }
             break;
         }
@@ -158,7 +165,9 @@ Outcome<void> run_command(const std::vector<std::string>& arguments, const std::
         }
         if (clock.now() >= deadline) {
             stop(child);
-            result = Error{ErrorKind::bench, name, "ran longer than " + std::to_string(std::lround(to_seconds(limit))) + " s and was stopped; " + output.tail(),
+            result = Error{ErrorKind::bench, name,
+                           "ran longer than " + std::to_string(std::lround(to_seconds(limit))) +
+                               " s and was stopped; " + output.tail(),
                            "raise before_run_limit_s in [commands], or find out what it waits for"};
             break;
         }

@@ -19,6 +19,8 @@ public:
 
     bool is_open() const { return number_ >= 0; }
     int number() const { return number_; }
+    /// Hands it on: the caller closes it.
+    int release() { return std::exchange(number_, -1); }
     /// What close() said: the last chance of some file systems to report a lost write.
     int close_now() { return number_ < 0 ? 0 : ::close(std::exchange(number_, -1)); }
 

@@ -8,10 +8,18 @@ Counts RunResult::counts() const {
     Counts counts;
     for (const CaseResult& result : cases) {
         switch (result.verdict) {
-            case CaseVerdict::pass: ++counts.pass; break;
-            case CaseVerdict::fail: ++counts.fail; break;
-            case CaseVerdict::invalid: ++counts.invalid; break;
-            case CaseVerdict::undecided: ++counts.undecided; break;
+            case CaseVerdict::pass:
+                ++counts.pass;
+                break;
+            case CaseVerdict::fail:
+                ++counts.fail;
+                break;
+            case CaseVerdict::invalid:
+                ++counts.invalid;
+                break;
+            case CaseVerdict::undecided:
+                ++counts.undecided;
+                break;
         }
     }
     counts.not_run = cases_planned.size() > cases.size() ? cases_planned.size() - cases.size() : 0;

@@ -28,8 +28,8 @@ struct BoardFacts {
 /// Which firmware is this? Design 5.
 struct FirmwareCheck {
     enum class State { not_verified, agrees } state = State::not_verified;
-    std::string image_file;      ///< of --image, "" without
-    std::string image_build_id;  ///< "" without
+    std::string image_file;           ///< of --image, "" without
+    std::string image_build_id;       ///< "" without
     bool before_run_skipped = false;  ///< because the board already ran the image
 };
 
@@ -71,7 +71,7 @@ struct RunResult {
     std::string started_utc;
     std::string title, plan_file, rig_file;
     std::string plan_sha256, rig_sha256;
-    std::string plan_text, rig_text;  ///< as they were
+    std::string plan_text, rig_text;    ///< as they were
     std::optional<std::uint64_t> seed;  ///< of --seed
     Signal signal;
     BoardFacts board;

@@ -3,6 +3,7 @@
 #include <limits>
 
 #include "make.hpp"
+#include "stimuli/number_text.hpp"
 #include "stimuli/values_check.hpp"
 
 using namespace halflsb;

@@ -1,3 +1,4 @@
+#include "stimuli/number_text.hpp"
 #include "stimuli/values_check.hpp"
 
 #include <catch2/catch.hpp>

@@ -31,7 +31,8 @@ inline Plan moving_average_plan(int points = 16) {
 inline Rule rule(const Plan& plan, const std::string& kind, const ParameterValues& given) {
     const SampleFormat& output = plan.signal.output;
     const RuleContext context{plan.signal.rate_hz, output.has_lsb(),
-                              output.has_lsb() ? full_scale_value(output) / lsb_value(output) : 0.0, plan.signal.full_scale_unit};
+                              output.has_lsb() ? full_scale_value(output) / lsb_value(output) : 0.0,
+                              plan.signal.full_scale_unit};
     auto made = make_rule(kind, given, context);
     REQUIRE(made);
     made->position = {"plan.toml", 20, 1};

@@ -12,9 +12,11 @@ using test::values;
 
 namespace {
 
-const ParameterValues noise = values({{"level_ratio", 0.9}, {"length_samples", std::int64_t{3000}}, {"seed", std::int64_t{5}}});
+const ParameterValues noise =
+    values({{"level_ratio", 0.9}, {"length_samples", std::int64_t{3000}}, {"seed", std::int64_t{5}}});
 
-CaseJudgement judge(const Plan& plan, const Case& the_case, const std::vector<Code>& response, std::size_t block = 256) {
+CaseJudgement judge(const Plan& plan, const Case& the_case, const std::vector<Code>& response,
+                    std::size_t block = 256) {
     CaseJudge judge(plan, the_case);
     for (std::size_t first = 0; first < response.size(); first += block) {
         judge.add(std::span(response).subspan(first, std::min(block, response.size() - first)));
@@ -31,7 +33,8 @@ std::vector<Code> delayed(const std::vector<Code>& response, int lag) {
     std::vector<Code> late(response.size(), 0);
     for (std::size_t n = 0; n < late.size(); ++n) {
         const auto from = static_cast<std::ptrdiff_t>(n) - lag;
-        if (from >= 0 && from < static_cast<std::ptrdiff_t>(late.size())) late[n] = response[static_cast<std::size_t>(from)];
+        if (from >= 0 && from < static_cast<std::ptrdiff_t>(late.size()))
+            late[n] = response[static_cast<std::size_t>(from)];
     }
     return late;
 }
@@ -40,7 +43,8 @@ std::vector<Code> delayed(const std::vector<Code>& response, int lag) {
 
 TEST_CASE("case judge: a right board passes error and latency, in any split into blocks", "[judge]") {
     const Plan plan = test::moving_average_plan();
-    const Case the_case = test::a_case(plan, "noise", noise, {test::rule(plan, "error", values({{"max_lsb", 0.5}})), test::implicit_latency()});
+    const Case the_case = test::a_case(
+        plan, "noise", noise, {test::rule(plan, "error", values({{"max_lsb", 0.5}})), test::implicit_latency()});
     const auto response = test::right_response(plan, the_case);
     for (const std::size_t block : {1U, 7U, 256U, 5000U}) {
         const CaseJudgement judgement = judge(plan, the_case, response, block);
@@ -56,7 +60,8 @@ TEST_CASE("case judge: a right board passes error and latency, in any split into
 
 TEST_CASE("case judge: one code beyond the limit fails and shows its neighbours", "[judge]") {
     const Plan plan = test::moving_average_plan();
-    const Case the_case = test::a_case(plan, "noise", noise, {test::rule(plan, "error", values({{"max_lsb", 0.5}})), test::implicit_latency()});
+    const Case the_case = test::a_case(
+        plan, "noise", noise, {test::rule(plan, "error", values({{"max_lsb", 0.5}})), test::implicit_latency()});
     const auto right = test::right_response(plan, the_case);
     for (const std::size_t bad : {0UL, 2UL, 255UL, 256UL, 258UL, 1000UL, 2998UL, 2999UL}) {
         for (const std::size_t block : {1U, 3U, 256U, 5000U}) {
@@ -114,7 +119,8 @@ TEST_CASE("case judge: a negative bias is held by its magnitude", "[judge]") {
 
 TEST_CASE("case judge: an exact match passes every SNR limit and says so", "[judge]") {
     const Plan plan = test::moving_average_plan(1);
-    const Case the_case = test::a_case(plan, "noise", noise, {test::rule(plan, "error", values({{"min_snr_db", 200.0}}))});
+    const Case the_case =
+        test::a_case(plan, "noise", noise, {test::rule(plan, "error", values({{"min_snr_db", 200.0}}))});
     auto response = test::right_response(plan, the_case);
     const RuleVerdict same = judge(plan, the_case, response).rules[0];
     CHECK(same.verdict == Verdict::pass);
@@ -125,7 +131,8 @@ TEST_CASE("case judge: an exact match passes every SNR limit and says so", "[jud
 
 TEST_CASE("case judge: a late response fails latency alone, the error is judged where it lies", "[judge]") {
     const Plan plan = test::moving_average_plan();
-    const Case the_case = test::a_case(plan, "noise", noise, {test::rule(plan, "error", values({{"max_lsb", 0.5}})), test::implicit_latency()});
+    const Case the_case = test::a_case(
+        plan, "noise", noise, {test::rule(plan, "error", values({{"max_lsb", 0.5}})), test::implicit_latency()});
     const auto right = test::right_response(plan, the_case);
     for (const int lag : {1, -1, 5, -40, 64, -64}) {
         INFO("lag " << lag);
@@ -133,13 +140,15 @@ TEST_CASE("case judge: a late response fails latency alone, the error is judged 
         CHECK(judgement.rules[1].verdict == Verdict::fail);
         CHECK(*judgement.rules[1].figures[0].value == lag);
         CHECK(judgement.rules[0].verdict == Verdict::pass);
-        CHECK(judgement.rules[0].reason.rfind("judged at the measured lag of " + std::to_string(lag) + " sample", 0) == 0);
+        CHECK(judgement.rules[0].reason.rfind("judged at the measured lag of " + std::to_string(lag) + " sample", 0) ==
+              0);
     }
 }
 
 TEST_CASE("case judge: a lag beyond the window fits nowhere", "[judge]") {
     const Plan plan = test::moving_average_plan();
-    const Case the_case = test::a_case(plan, "noise", noise, {test::rule(plan, "error", values({{"max_lsb", 0.5}})), test::implicit_latency()});
+    const Case the_case = test::a_case(
+        plan, "noise", noise, {test::rule(plan, "error", values({{"max_lsb", 0.5}})), test::implicit_latency()});
     const CaseJudgement judgement = judge(plan, the_case, delayed(test::right_response(plan, the_case), 65));
     CHECK(judgement.rules[0].verdict == Verdict::fail);
     // The nearest lag of the window is better than 0, but not by a factor of 100.
@@ -150,7 +159,8 @@ TEST_CASE("case judge: a lag beyond the window fits nowhere", "[judge]") {
 TEST_CASE("case judge: an expected latency of three is right at three and wrong at zero", "[judge]") {
     const Plan plan = test::moving_average_plan();
     const Rule three = test::rule(plan, "latency", values({{"latency_samples", std::int64_t{3}}}));
-    const Case the_case = test::a_case(plan, "noise", noise, {three, test::rule(plan, "error", values({{"max_lsb", 0.5}}))});
+    const Case the_case =
+        test::a_case(plan, "noise", noise, {three, test::rule(plan, "error", values({{"max_lsb", 0.5}}))});
     const auto right = test::right_response(plan, the_case);
     CHECK(verdict_of(judge(plan, the_case, delayed(right, 3)).rules) == CaseVerdict::pass);
     const CaseJudgement early = judge(plan, the_case, right);
@@ -161,7 +171,8 @@ TEST_CASE("case judge: an expected latency of three is right at three and wrong 
 
 TEST_CASE("case judge: a late and wrong response fails latency by its hundredfold smaller residual", "[judge]") {
     const Plan plan = test::moving_average_plan();
-    const Case the_case = test::a_case(plan, "noise", noise, {test::rule(plan, "error", values({{"max_lsb", 0.5}})), test::implicit_latency()});
+    const Case the_case = test::a_case(
+        plan, "noise", noise, {test::rule(plan, "error", values({{"max_lsb", 0.5}})), test::implicit_latency()});
     auto response = delayed(test::right_response(plan, the_case), 2);
     for (Code& code : response) code += 2;
     const CaseJudgement judgement = judge(plan, the_case, response);
@@ -172,7 +183,8 @@ TEST_CASE("case judge: a late and wrong response fails latency by its hundredfol
 TEST_CASE("case judge: a small step cannot tell its latency and leaves the implicit rule out", "[judge]") {
     const Plan plan = test::moving_average_plan();
     const auto step = [](std::int64_t codes) {
-        return values({{"level_codes", codes}, {"length_samples", std::int64_t{500}}, {"at_samples", std::int64_t{20}}});
+        return values(
+            {{"level_codes", codes}, {"length_samples", std::int64_t{500}}, {"at_samples", std::int64_t{20}}});
     };
     const std::vector<Rule> rules{test::rule(plan, "error", values({{"max_lsb", 0.5}})), test::implicit_latency()};
     const Case small = test::a_case(plan, "step", step(40), rules);
@@ -187,9 +199,10 @@ TEST_CASE("case judge: the latency criterion is 130 sigma squared, sigma from LS
     // A 1-point average of a step of A codes: lag k leaves |k| samples of A, so D(1) = A^2.
     const Plan plan = test::moving_average_plan(1);
     const auto told = [&](std::int64_t codes, const ParameterValues& limits) {
-        const Case the_case = test::a_case(plan, "step",
-                                           values({{"level_codes", codes}, {"length_samples", std::int64_t{500}}, {"at_samples", std::int64_t{100}}}),
-                                           {test::rule(plan, "error", limits), test::implicit_latency()});
+        const Case the_case = test::a_case(
+            plan, "step",
+            values({{"level_codes", codes}, {"length_samples", std::int64_t{500}}, {"at_samples", std::int64_t{100}}}),
+            {test::rule(plan, "error", limits), test::implicit_latency()});
         return latency_evidence(plan, the_case).can_tell;
     };
     // sqrt(130) = 11.4
@@ -207,7 +220,8 @@ TEST_CASE("case judge: NaN from a float board never passes", "[judge]") {
     Plan plan = test::moving_average_plan(4);
     plan.signal.input = *sample_format("f32");
     plan.signal.output = *sample_format("f32");
-    const Case the_case = test::a_case(plan, "noise", noise, {test::rule(plan, "error", values({{"max_ratio", 1e-3}})), test::implicit_latency()});
+    const Case the_case = test::a_case(
+        plan, "noise", noise, {test::rule(plan, "error", values({{"max_ratio", 1e-3}})), test::implicit_latency()});
     auto response = test::right_response(plan, the_case);
     CHECK(verdict_of(judge(plan, the_case, response).rules) == CaseVerdict::pass);
     response[1234] = code_of(plan.signal.output, 0.0, Rounding::half_up) | 0x7fc00000;
@@ -222,13 +236,18 @@ TEST_CASE("case judge: gain against bands, from noise, chirp and multitone, on b
     // |A| of 4 points at f = 0.1 is 0.769420884293813 (check-values.md section 1, COMPUTED): -2.27666 dB.
     const std::vector<std::pair<std::string, ParameterValues>> stimuli{
         {"noise", values({{"level_ratio", 0.9}, {"length_samples", std::int64_t{40960}}})},
-        {"chirp", values({{"from_hz", 20.0}, {"to_hz", 500.0}, {"level_ratio", 0.9}, {"length_samples", std::int64_t{40960}}})},
-        {"multitone", values({{"frequencies_hz", std::vector<double>{60.0, 120.0, 300.0}}, {"level_ratio", 0.9}, {"length_samples", std::int64_t{40960}}})},
+        {"chirp",
+         values({{"from_hz", 20.0}, {"to_hz", 500.0}, {"level_ratio", 0.9}, {"length_samples", std::int64_t{40960}}})},
+        {"multitone", values({{"frequencies_hz", std::vector<double>{60.0, 120.0, 300.0}},
+                              {"level_ratio", 0.9},
+                              {"length_samples", std::int64_t{40960}}})},
     };
     for (const auto& [shape, given] : stimuli) {
         INFO(shape);
         const auto verdict = [&](double min_db, double max_db) {
-            const Rule rule = test::rule(plan, "response", values({{"bands", std::vector<std::vector<double>>{{119.8, 120.2, min_db, max_db}}}}));
+            const Rule rule =
+                test::rule(plan, "response",
+                           values({{"bands", std::vector<std::vector<double>>{{119.8, 120.2, min_db, max_db}}}}));
             const Case the_case = test::a_case(plan, shape, given, {rule});
             return judge(plan, the_case, test::right_response(plan, the_case)).rules[0];
         };
@@ -245,8 +264,10 @@ TEST_CASE("case judge: gain against bands, from noise, chirp and multitone, on b
 
 TEST_CASE("case judge: a band without power is undecided, not passed", "[judge]") {
     const Plan plan = test::moving_average_plan(4);
-    const Rule rule = test::rule(plan, "response", values({{"bands", std::vector<std::vector<double>>{{550.0, 590.0, -90.0, 90.0}}}}));
-    const Case the_case = test::a_case(plan, "chirp", values({{"from_hz", 20.0}, {"to_hz", 500.0}, {"length_samples", std::int64_t{8192}}}), {rule});
+    const Rule rule = test::rule(plan, "response",
+                                 values({{"bands", std::vector<std::vector<double>>{{550.0, 590.0, -90.0, 90.0}}}}));
+    const Case the_case = test::a_case(
+        plan, "chirp", values({{"from_hz", 20.0}, {"to_hz", 500.0}, {"length_samples", std::int64_t{8192}}}), {rule});
     const RuleVerdict verdict = judge(plan, the_case, test::right_response(plan, the_case)).rules[0];
     CHECK(verdict.verdict == Verdict::undecided);
     CHECK(verdict.reason == "the stimulus has no power from 550 Hz to 590 Hz");
@@ -257,7 +278,9 @@ TEST_CASE("case judge: an error while reading the capture again is handed on", "
     const Case the_case = test::a_case(plan, "noise", noise, {test::implicit_latency()});
     CaseJudge judge(plan, the_case);
     judge.add(delayed(test::right_response(plan, the_case), 1));
-    const auto outcome = judge.finish([](std::int64_t, std::span<Code>) -> Outcome<void> { return Error{ErrorKind::output, "capture", "gone", ""}; });
+    const auto outcome = judge.finish([](std::int64_t, std::span<Code>) -> Outcome<void> {
+        return Error{ErrorKind::output, "capture", "gone", ""};
+    });
     REQUIRE_FALSE(outcome);
     CHECK(outcome.error().problem == "gone");
 }

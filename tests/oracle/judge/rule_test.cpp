@@ -23,7 +23,8 @@ constexpr double none = no_limit;
 }  // namespace
 
 TEST_CASE("rule: error limits are read in LSB, fraction of full scale and engineering units", "[judge]") {
-    const auto made = make_rule("error", values({{"max_lsb", 0.5}, {"rms_ratio", 1e-5}, {"bias_unit", 0.1}, {"min_snr_db", 60.0}}), q15);
+    const auto made = make_rule(
+        "error", values({{"max_lsb", 0.5}, {"rms_ratio", 1e-5}, {"bias_unit", 0.1}, {"min_snr_db", 60.0}}), q15);
     REQUIRE(made);
     const auto& rule = std::get<ErrorRule>(made->kind);
     CHECK(*rule.largest == Limit{0.5, Limit::In::lsb});
@@ -36,13 +37,15 @@ TEST_CASE("rule: error limits are read in LSB, fraction of full scale and engine
 TEST_CASE("rule: an error rule without a limit is refused", "[judge]") {
     const Error error = refused("error", {});
     CHECK(to_text(error) ==
-          "kind: an error rule without a limit judges nothing\n  give at least one of max_lsb, rms_lsb, bias_lsb (or _ratio, _unit) and min_snr_db");
+          "kind: an error rule without a limit judges nothing\n  give at least one of max_lsb, rms_lsb, bias_lsb (or "
+          "_ratio, _unit) and min_snr_db");
 }
 
 TEST_CASE("rule: a limit wider than full scale is refused, full scale itself is not", "[judge]") {
     CHECK(make_rule("error", values({{"max_lsb", 32768.0}}), q15));
     CHECK(to_text(refused("error", values({{"max_lsb", 32769.0}}))) ==
-          "max_lsb: 32769 is wider than full scale (32768)\n  a limit that wide judges nothing; give the error that the design allows");
+          "max_lsb: 32769 is wider than full scale (32768)\n  a limit that wide judges nothing; give the error that "
+          "the design allows");
     CHECK(refused("error", values({{"rms_ratio", 1.001}})).place == "rms_ratio");
     CHECK(refused("error", values({{"max_unit", 6000.5}})).place == "max_unit");
 }
@@ -51,13 +54,16 @@ TEST_CASE("rule: a limit given twice, or in a unit that has no meaning, is refus
     CHECK(to_text(refused("error", values({{"max_lsb", 1.0}, {"max_ratio", 0.1}}))) ==
           "max_ratio: the same limit is given twice, as max_lsb and as max_ratio\n  keep one of the two");
     const RuleContext f32{1200.0, false, 0.0, std::nullopt};
-    CHECK(to_text(refused("error", values({{"bias_lsb", 1.0}}), f32)) == "bias_lsb: an f32 output has no LSB\n  use bias_ratio or bias_unit");
+    CHECK(to_text(refused("error", values({{"bias_lsb", 1.0}}), f32)) ==
+          "bias_lsb: an f32 output has no LSB\n  use bias_ratio or bias_unit");
     CHECK(to_text(refused("error", values({{"max_unit", 1.0}}), f32)) ==
-          "max_unit: nothing says what full scale is worth in the unit\n  set full_scale_unit in [signal], or use max_ratio");
+          "max_unit: nothing says what full scale is worth in the unit\n  set full_scale_unit in [signal], or use "
+          "max_ratio");
 }
 
 TEST_CASE("rule: bands must run forwards, stay below Nyquist and not cross", "[judge]") {
-    const auto made = make_rule("response", values({{"bands", Rows{{0.0, 600.0, -1.0, none}, {10.0, 10.0, -none, 3.0}}}}), q15);
+    const auto made =
+        make_rule("response", values({{"bands", Rows{{0.0, 600.0, -1.0, none}, {10.0, 10.0, -none, 3.0}}}}), q15);
     REQUIRE(made);
     const auto& bands = std::get<ResponseRule>(made->kind).bands;
     REQUIRE(bands.size() == 2);

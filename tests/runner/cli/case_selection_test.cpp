@@ -2,8 +2,6 @@
 
 #include <catch2/catch.hpp>
 
-#include "runner/cli/nearest.hpp"
-
 using namespace halflsb;
 
 namespace {
@@ -78,20 +76,4 @@ TEST_CASE("glob: star for any number of characters, question mark for one", "[cl
     CHECK_FALSE(matches_glob("[ab]", "a"));
     // Would take 2^40 steps without care.
     CHECK_FALSE(matches_glob("*a*a*a*a*a*a*a*a*a*a*a*a*a*a*a*a*a*a*a*a*b", std::string(2000, 'a')));
-}
-
-TEST_CASE("nearest: distance counts insertions, deletions, substitutions and swaps", "[cli]") {
-    CHECK(edit_distance("", "") == 0);
-    CHECK(edit_distance("abc", "") == 3);
-    CHECK(edit_distance("check", "chekc") == 1);
-    CHECK(edit_distance("--rig", "--ring") == 1);
-    CHECK(edit_distance("kitten", "sitting") == 3);
-}
-
-TEST_CASE("nearest: only what is near enough, the first of equals", "[cli]") {
-    CHECK(nearest_of("chek", {"check", "chess"}) == "check");
-    CHECK(nearest_of("b", {"a", "c"}) == "a");
-    CHECK(nearest_of("xyz", {"check"}) == std::nullopt);
-    CHECK(nearest_of("x", {}) == std::nullopt);
-    CHECK(nearest_of(std::string(100000, 'a'), {std::string(100000, 'a')}) == std::nullopt);
 }

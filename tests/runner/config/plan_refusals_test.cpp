@@ -1,6 +1,6 @@
 // Every refusal of a plan, whole. Where the words belong to another room (a stimulus, a filter, a rule),
 // they are asked from there, and place, line, caret and remedy are held to them.
-#include "runner/config/shown_number.hpp"
+#include "stimuli/number_text.hpp"
 #include "tests/support/config_texts.hpp"
 
 using namespace halflsb;
@@ -323,7 +323,7 @@ TEST_CASE("plan: what a shape, a filter or a rule refuses is told at its key", "
             values.set(name, number);
             const Error error = make_rule("error", values, context).error();
             REQUIRE(error.place == name);
-            refused("max_lsb = 1.5", std::string(name) + " = " + shown_number(number), 16, shown_number(number),
+            refused("max_lsb = 1.5", std::string(name) + " = " + number_text(number), 16, number_text(number),
                     shown(error), error.remedy);
         }
     }

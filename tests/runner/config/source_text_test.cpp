@@ -2,9 +2,7 @@
 
 #include <catch2/catch.hpp>
 
-#include "runner/config/nearest.hpp"
 #include "runner/config/problems.hpp"
-#include "runner/config/shown_number.hpp"
 
 using namespace halflsb;
 
@@ -97,28 +95,4 @@ TEST_CASE("problems: are shown in the order of their places, equal ones as they 
     CHECK(texts[1].find("second") != std::string::npos);
     CHECK(texts[2].find("third") != std::string::npos);
     CHECK(texts[3] == "fourth");
-}
-
-TEST_CASE("nearest word: slips of the pen are recognised, other words are not", "[config]") {
-    const std::vector<std::string_view> known = {"max_lsb", "rms_lsb", "bias_lsb", "kind"};
-    CHECK(nearest_word("max_lbs", known) == "max_lsb");  // neighbours exchanged
-    CHECK(nearest_word("max_ls", known) == "max_lsb");
-    CHECK(nearest_word("maxlsb", known) == "max_lsb");
-    CHECK(nearest_word("Max-LSB", known) == "max_lsb");
-    CHECK(nearest_word("knid", known) == "kind");
-    CHECK(nearest_word("shape", known).empty());
-    CHECK(nearest_word("", known).empty());
-    CHECK(nearest_word(std::string(1000, 'x'), known).empty());
-    CHECK(nearest_word("kind", {}).empty());
-    CHECK(joined_words({}).empty());
-    CHECK(joined_words({"a"}) == "a");
-    CHECK(joined_words({"a", "b", "c"}) == "a, b or c");
-}
-
-TEST_CASE("shown number: whole ones without exponent, others as short as they read back", "[config]") {
-    CHECK(shown_number(12000000.0) == "12000000");
-    CHECK(shown_number(-3.0) == "-3");
-    CHECK(shown_number(0.1) == "0.1");
-    CHECK(shown_number(1e300) == "1e+300");
-    CHECK(shown_number(1e-6) == "1e-06");
 }

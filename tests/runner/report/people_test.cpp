@@ -8,29 +8,29 @@
 using namespace halflsb;
 
 TEST_CASE("people: a number shows four significant digits and no trailing zeros", "[report]") {
-    CHECK(number_text(0.0) == "0");
-    CHECK(number_text(-0.0) == "0");
-    CHECK(number_text(0.5) == "0.5");
-    CHECK(number_text(0.49949) == "0.4995");
-    CHECK(number_text(-0.010004) == "-0.01");
-    CHECK(number_text(9.99996) == "10");
-    CHECK(number_text(61.23456) == "61.23");
-    CHECK(number_text(1234.56) == "1235");
-    CHECK(number_text(0.00012345) == "0.0001234");  // the double lies below the tie
-    CHECK(number_text(0.000099) == "9.9e-05");
-    CHECK(number_text(1.5e12 + 0.5) == "1.5e+12");
+    CHECK(rounded_text(0.0) == "0");
+    CHECK(rounded_text(-0.0) == "0");
+    CHECK(rounded_text(0.5) == "0.5");
+    CHECK(rounded_text(0.49949) == "0.4995");
+    CHECK(rounded_text(-0.010004) == "-0.01");
+    CHECK(rounded_text(9.99996) == "10");
+    CHECK(rounded_text(61.23456) == "61.23");
+    CHECK(rounded_text(1234.56) == "1235");
+    CHECK(rounded_text(0.00012345) == "0.0001234");  // the double lies below the tie
+    CHECK(rounded_text(0.000099) == "9.9e-05");
+    CHECK(rounded_text(1.5e12 + 0.5) == "1.5e+12");
 }
 
 TEST_CASE("people: a whole number keeps all its digits", "[report]") {
-    CHECK(number_text(-2147483648.0) == "-2147483648");
-    CHECK(number_text(100.0) == "100");
-    CHECK(number_text(1e15) == "1e+15");
+    CHECK(rounded_text(-2147483648.0) == "-2147483648");
+    CHECK(rounded_text(100.0) == "100");
+    CHECK(rounded_text(1e15) == "1e+15");
 }
 
 TEST_CASE("people: what is no finite number is said in words", "[report]") {
-    CHECK(number_text(std::numeric_limits<double>::quiet_NaN()) == "not a number");
-    CHECK(number_text(HUGE_VAL) == "infinite");
-    CHECK(number_text(-HUGE_VAL) == "-infinite");
+    CHECK(rounded_text(std::numeric_limits<double>::quiet_NaN()) == "not a number");
+    CHECK(rounded_text(HUGE_VAL) == "infinite");
+    CHECK(rounded_text(-HUGE_VAL) == "-infinite");
     CHECK(fixed_text(-HUGE_VAL, 3) == "-infinite");
 }
 
@@ -82,7 +82,7 @@ TEST_CASE("people: the decimal point does not follow the locale", "[report]") {
     // Whichever of these is installed; the functions must not look at it in any case.
     const bool comma = std::setlocale(LC_ALL, "de_DE.UTF-8") != nullptr || std::setlocale(LC_ALL, "de_DE") != nullptr;
     INFO("a locale with a decimal comma is " << (comma ? "in use" : "not installed"));
-    CHECK(number_text(0.5) == "0.5");
+    CHECK(rounded_text(0.5) == "0.5");
     CHECK(fixed_text(1.25, 2) == "1.25");
     std::setlocale(LC_ALL, "C");
 }

@@ -1,4 +1,4 @@
-#include "runner/config/nearest.hpp"
+#include "runner/world/nearest.hpp"
 
 #include <algorithm>
 #include <cstddef>
