@@ -2,6 +2,7 @@
 """The virtual board against an independent host and independent models: greeting, samples, faults, the line's faults,
 its manners as a program.     virtual_board_test.py PROGRAM"""
 
+import fcntl
 import os
 import random
 import re
@@ -9,6 +10,7 @@ import signal
 import subprocess
 import sys
 import tempfile
+import termios
 import time
 import unittest
 
@@ -255,6 +257,22 @@ class Program(unittest.TestCase):
                 host.to_send += frame(b"\x10half a frame")[:5]  # leaves in the middle of a frame
                 host.exchange_bytes(0.01)
                 host.close()
+
+    def test_a_claim_ends_with_the_host_that_made_it(self):
+        get_claim = 0x80045440  # TIOCGEXCL
+        with VirtualBoard(PROGRAM) as board:
+            claim = bytearray(4)
+            fcntl.ioctl(board.host.descriptor, get_claim, claim)
+            self.assertEqual(claim, bytes(4))
+            host = WireHost(board.device)
+            fcntl.ioctl(host.descriptor, termios.TIOCEXCL)
+            fcntl.ioctl(board.host.descriptor, get_claim, claim)
+            self.assertEqual(claim[0], 1)
+            host.close()
+            deadline = time.monotonic() + 5
+            while claim[0] and time.monotonic() < deadline:
+                fcntl.ioctl(board.host.descriptor, get_claim, claim)
+            self.assertEqual(claim, bytes(4))
 
     def test_its_link_appears_and_goes_with_it(self):
         with tempfile.TemporaryDirectory() as folder:
