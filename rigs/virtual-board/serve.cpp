@@ -216,10 +216,11 @@ std::string serve(const PseudoTerminal& terminal, Board& board, const Options& o
     };
     server.power_up();
     sigset_t blocked;
-    while (end_asked == 0 && !server.failed() && !server.is_unplugged()) {
+    while (!server.failed() && !server.is_unplugged()) {
         // ppoll lets no signal in when a descriptor is ready at once: a busy line would put the end off for ever.
         sigprocmask(SIG_SETMASK, &none, &blocked);
         sigprocmask(SIG_SETMASK, &blocked, nullptr);
+        if (end_asked != 0) break;
         const Nanoseconds now = now_ns();
         server.take_input(now);
         server.let_board_work(now);
