@@ -2,6 +2,8 @@
 
 #include <fcntl.h>
 #include <stdlib.h>
+#include <sys/inotify.h>
+#include <sys/ioctl.h>
 #include <sys/stat.h>
 #include <termios.h>
 #include <unistd.h>
@@ -32,6 +34,8 @@ std::string PseudoTerminal::open(const std::string& link) {
     if (host_side_ < 0 || ::tcgetattr(host_side_, &settings) != 0) return failed(device_);
     ::cfmakeraw(&settings);  // a new one would rewrite line ends and echo
     if (::tcsetattr(host_side_, TCSANOW, &settings) != 0) return failed(device_);
+    closings_ = ::inotify_init1(IN_NONBLOCK | IN_CLOEXEC);
+    if (closings_ >= 0) ::inotify_add_watch(closings_, device_.c_str(), IN_CLOSE);
     if (link.empty()) return "";
 
     struct stat there {};
@@ -47,12 +51,20 @@ std::string PseudoTerminal::open(const std::string& link) {
     return "";
 }
 
+void PseudoTerminal::forget_claim() const {
+    alignas(inotify_event) std::array<char, 4096> events;
+    while (::read(closings_, events.data(), events.size()) > 0) {
+    }
+    ::ioctl(host_side_, TIOCNXCL);
+}
+
 PseudoTerminal::~PseudoTerminal() {
     // Another board may have taken the name over meanwhile: only our own link is removed.
     std::array<char, 128> target{};
     if (!link_.empty() && ::readlink(link_.c_str(), target.data(), target.size() - 1) > 0 && device_ == target.data()) {
         ::unlink(link_.c_str());
     }
+    if (closings_ >= 0) ::close(closings_);
     if (host_side_ >= 0) ::close(host_side_);
     if (board_side_ >= 0) ::close(board_side_);
 }

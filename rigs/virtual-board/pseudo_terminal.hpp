@@ -19,8 +19,13 @@ public:
     int descriptor() const { return board_side_; }
     const std::string& device() const { return device_; }
 
+    /// Readable when a host has closed the device; -1 when the system cannot tell.
+    int closings() const { return closings_; }
+    /// Takes back a host's claim (TIOCEXCL), which would outlive it because the device stays open here.
+    void forget_claim() const;
+
 private:
-    int board_side_ = -1;
+    int board_side_ = -1, closings_ = -1;
     int host_side_ = -1;  // held open: without it the board's side reports an error between two hosts
     std::string device_, link_;
 };

@@ -29,8 +29,9 @@ extern "C" void on_statistics(int) { statistics_asked = 1; }
 
 class Server {
 public:
-    Server(int descriptor, Board& board, const Options& options, const Faults& faults)
-        : descriptor_(descriptor),
+    Server(const PseudoTerminal& terminal, Board& board, const Options& options, const Faults& faults)
+        : terminal_(terminal),
+          descriptor_(terminal.descriptor()),
           board_(board),
           faults_(faults.line),
           in_(options.baud),
@@ -63,6 +64,7 @@ private:
         return faults_.stall_every == 0 ? output_.size() : faults_.stall_every - out_.bytes() % faults_.stall_every;
     }
 
+    const PseudoTerminal& terminal_;
     int descriptor_;
     Board& board_;
     LineFaults faults_;
@@ -160,7 +162,8 @@ void Server::give_output(Nanoseconds now) {
 void Server::wait(Nanoseconds now, const sigset_t& signals) {
     Nanoseconds until = 0;  // 0: for ever
     const auto not_after = [&until](Nanoseconds time) { until = until == 0 ? time : std::min(until, time); };
-    pollfd watched{descriptor_, 0, 0};
+    std::array<pollfd, 2> all = {{{descriptor_, 0, 0}, {terminal_.closings(), POLLIN, 0}}};
+    pollfd& watched = all[0];
     if (!input_waits_) {
         watched.events |= POLLIN;
     } else if (output_.size() < output_bytes_most) {
@@ -175,11 +178,12 @@ void Server::wait(Nanoseconds now, const sigset_t& signals) {
     }
     const Nanoseconds left = std::max<Nanoseconds>(0, until - now);
     const timespec timeout{left / 1'000'000'000, left % 1'000'000'000};
-    const int ready = ::ppoll(&watched, 1, until == 0 ? nullptr : &timeout, &signals);
+    const int ready = ::ppoll(all.data(), all.size(), until == 0 ? nullptr : &timeout, &signals);
     if (ready > 0 && (watched.revents & (POLLIN | POLLHUP)) != 0) {
         in_.idle(now_ns());  // the byte that came begins now
         input_waits_ = true;
     }
+    if (ready > 0 && all[1].revents != 0) terminal_.forget_claim();
     failed_ = failed_ || (ready < 0 && errno != EINTR);
 }
 
@@ -204,14 +208,19 @@ void take_signals() {
 std::string serve(const PseudoTerminal& terminal, Board& board, const Options& options, const Faults& faults) {
     sigset_t none;
     sigemptyset(&none);
-    Server server(terminal.descriptor(), board, options, faults);
+    Server server(terminal, board, options, faults);
     const auto write_account = [&] {
         if (options.stats_file.empty()) return std::string();
         const Account account{terminal.device(), options.baud, faults.names, server.bytes_in(), server.bytes_out()};
         return write_statistics(options.stats_file, statistics_json(account, server.statistics()));
     };
     server.power_up();
-    while (end_asked == 0 && !server.failed() && !server.is_unplugged()) {
+    sigset_t blocked;
+    while (!server.failed() && !server.is_unplugged()) {
+        // ppoll lets no signal in when a descriptor is ready at once: a busy line would put the end off for ever.
+        sigprocmask(SIG_SETMASK, &none, &blocked);
+        sigprocmask(SIG_SETMASK, &blocked, nullptr);
+        if (end_asked != 0) break;
         const Nanoseconds now = now_ns();
         server.take_input(now);
         server.let_board_work(now);

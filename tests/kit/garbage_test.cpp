@@ -22,7 +22,8 @@ private:
 
 /// The board still answers, whatever came before.
 void check_alive(std::uint32_t nonce) {
-    put(u8(0));  // ends what was there
+    put({});     // works off what is there: a full ring has no room for a delimiter
+    put(u8(0));  // ends what was cut
     take_bytes();
     CHECK(ask_one(u8(0x03) + u32(nonce), 0x83).size() == 25);
     const unsigned credit = start(double_filter, HALFLSB_BLOCK_SAMPLES).credit;

@@ -1,6 +1,7 @@
 // rigs/filters against closed forms, and the variants that faults are made of against rigs/filters.
 #include <catch2/catch.hpp>
 #include <cstdint>
+#include <initializer_list>
 #include <limits>
 #include <random>
 #include <vector>
@@ -99,7 +100,7 @@ TEST_CASE("fixed point: dropping bits rounds halves upward on both sides of a ti
 }
 
 TEST_CASE("moving average: an impulse gives points equal codes, and both rails stay on the rail", "[rigs]") {
-    for (std::uint16_t points : {1, 2, 7, 16, 255, 4096, 16384}) {
+    for (std::uint16_t points : std::initializer_list<std::uint16_t>{1, 2, 7, 16, 255, 4096, 16384}) {
         INFO(points << " points");
         std::vector<std::int16_t> ring(points), codes(2u * points + 2u);
         moving_average_q15 filter{};
@@ -135,33 +136,25 @@ TEST_CASE("FIR: -1 times -1 saturates at the top code", "[rigs]") {
 }
 
 TEST_CASE("q31 biquad: five products of the largest size are summed exactly", "[rigs]") {
-    // -2 for each coefficient and -1 for each sample: the sum is 10, far beyond 64 bits of Q61, and saturates; with the
-    // signs mixed, 2 + 2 - 2 - 2 + b0 x leaves b0 x alone.
+    // -2 for each coefficient and -1 for each sample: the sum is 10, five times beyond the range of 64 bits.
     constexpr std::int32_t bottom = std::numeric_limits<std::int32_t>::min();
-    biquad_q31_coefficients same = {bottom, bottom, bottom, bottom, bottom};
+    constexpr std::int32_t top = std::numeric_limits<std::int32_t>::max();
+    const biquad_q31_coefficients same = {bottom, bottom, bottom, bottom, bottom};
     biquad_q31_state state{};
     biquad_q31 filter{};
     biquad_q31_init(&filter, &same, &state, 1);
     state = {bottom, bottom, bottom, bottom};
     std::int32_t code = bottom;
     biquad_q31_process(&filter, &code, &code, 1);
-    CHECK(code == std::numeric_limits<std::int32_t>::max());
+    CHECK(code == top);
 
-    biquad_q31_coefficients mixed = {1, bottom, bottom, bottom, bottom};
-    filter.coefficients = &mixed;
-    state = {bottom, bottom + 1, bottom, 0};
-    // 2^-30 x + (-2)(-1) + (-2)(-1 + 2^-31) + (-2)(-1) + 0 saturates; a2's zero turned to 2^31 - 1 brings it back to
-    // 2 + 2 - 2^-30 + 2 - 2 (1 - 2^-31) = 4 - 2^-30 + 2^-30 = 4: still saturated.
-    code = 1 << 30;
-    biquad_q31_process(&filter, &code, &code, 1);
-    CHECK(code == std::numeric_limits<std::int32_t>::max());
-    // Opposite pairs cancel to the last bit: b1 x1 + a1 y1 = 0, b2 x2 + a2 y2 = 0, b0 x = 2^-30 (1/2) = 1 LSB / 1.
-    state = {bottom, bottom, -bottom - 1, -bottom - 1};
-    biquad_q31_coefficients opposite = {1 << 29, bottom, bottom, bottom, bottom};
+    // Large products that nearly cancel: b1 x1 + a1 y1 = 2 - 2 (1 - 2^-31) is 2 codes, and b2, a2 the same. With
+    // b0 x = 1/2 x 5 = 2.5 codes the sum is 6.5, upward to 7.
+    const biquad_q31_coefficients opposite = {1 << 29, bottom, bottom, bottom, bottom};
     filter.coefficients = &opposite;
+    state = {bottom, bottom, top, top};
     code = 5;
     biquad_q31_process(&filter, &code, &code, 1);
-    // 5 x 0.5 = 2.5, and -2 (-1 + 1 - 2^-31) twice adds 2 codes each: 2.5 + 2 + 2 = 6.5, upward to 7.
     CHECK(code == 7);
 }
 
