@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: 0BSD */
-#include "rigs/kit/answers.h"
+#include "answers.h"
 
-#include "rigs/kit/bytes.h"
+#include "bytes.h"
 
 /* One struct, so that its members share a base address. */
 static struct {

@@ -6,7 +6,7 @@
 #ifndef HALFLSB_ANSWERS_H
 #define HALFLSB_ANSWERS_H
 
-#include "rigs/kit/layout.h"
+#include "layout.h"
 
 /* Forgets all; from now on answers hold up to samples_bytes of samples. How many are kept: at most `most`. */
 uint8_t halflsb_answers_open(uint32_t samples_bytes, uint8_t most);

@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: 0BSD */
-#include "rigs/kit/bytes.h"
+#include "bytes.h"
 
 uint16_t halflsb_get16(const uint8_t* p) { return (uint16_t)(p[0] | ((unsigned)p[1] << 8)); }
 

@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: 0BSD */
-#include "rigs/kit/cobs.h"
+#include "cobs.h"
 
 void halflsb_cobs_encode(const uint8_t* content, size_t count, void (*write)(const uint8_t* bytes, size_t count)) {
     for (;;) {

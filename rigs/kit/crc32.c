@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: 0BSD */
-#include "rigs/kit/crc32.h"
+#include "crc32.h"
 
 /* One entry a nibble: 64 bytes of flash instead of 1 KiB, and far faster than bit by bit. Entry i is the
  * register 0x0000000i after four shifts through the reflected polynomial 0xEDB88320. */

@@ -1,9 +1,9 @@
 /* SPDX-License-Identifier: 0BSD */
-#include "rigs/kit/frame.h"
+#include "frame.h"
 
-#include "rigs/kit/bytes.h"
-#include "rigs/kit/cobs.h"
-#include "rigs/kit/crc32.h"
+#include "bytes.h"
+#include "cobs.h"
+#include "crc32.h"
 
 static int is_whole(struct halflsb_frame* frame) {
     struct halflsb_cobs_decoder decoder = {0, 0};

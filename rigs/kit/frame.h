@@ -7,7 +7,7 @@
 #ifndef HALFLSB_FRAME_H
 #define HALFLSB_FRAME_H
 
-#include "rigs/kit/ring.h"
+#include "ring.h"
 
 #define HALFLSB_CRC_BYTES 4
 /* The longest content that is not a block: LOAD of 8 values. */

@@ -1,9 +1,9 @@
 /* SPDX-License-Identifier: 0BSD */
-#include "rigs/kit/greeting.h"
+#include "greeting.h"
 
 #include <string.h>
 
-#include "rigs/kit/bytes.h"
+#include "bytes.h"
 
 #define PROTOCOL 1
 #define TEXT_BYTES 24

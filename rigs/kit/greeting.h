@@ -5,7 +5,7 @@
 #ifndef HALFLSB_GREETING_H
 #define HALFLSB_GREETING_H
 
-#include "rigs/kit/halflsb_kit.h"
+#include "halflsb_kit.h"
 
 /* Type, nonce, page, pages; the longest page (69); CRC. */
 #define HALFLSB_GREETING_BYTES 80

@@ -4,10 +4,10 @@
  */
 #include <string.h>
 
-#include "rigs/kit/bytes.h"
-#include "rigs/kit/greeting.h"
-#include "rigs/kit/halflsb_kit.h"
-#include "rigs/kit/stream.h"
+#include "bytes.h"
+#include "greeting.h"
+#include "halflsb_kit.h"
+#include "stream.h"
 
 #define ECHO_BYTES 32
 

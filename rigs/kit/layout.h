@@ -5,7 +5,7 @@
 #ifndef HALFLSB_LAYOUT_H
 #define HALFLSB_LAYOUT_H
 
-#include "rigs/kit/halflsb_kit.h"
+#include "halflsb_kit.h"
 
 #if HALFLSB_BLOCK_SAMPLES < 1 || HALFLSB_BLOCK_SAMPLES > 4096
 #error "HALFLSB_BLOCK_SAMPLES: 1 .. 4096"

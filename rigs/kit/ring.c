@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: 0BSD */
-#include "rigs/kit/ring.h"
+#include "ring.h"
 
 /* One struct, so that its members share a base address. volatile also keeps the store of a byte before the store
  * of the index that publishes it. */

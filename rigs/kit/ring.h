@@ -6,7 +6,7 @@
 #ifndef HALFLSB_RING_H
 #define HALFLSB_RING_H
 
-#include "rigs/kit/layout.h"
+#include "layout.h"
 
 /* Wide enough for the ring and no wider, so that small processors read it in one go. */
 #if HALFLSB_CREDIT_BLOCKS * (HALFLSB_BLOCK_BYTES + 64) * 257 / 256 < 60000

@@ -1,10 +1,10 @@
 /* SPDX-License-Identifier: 0BSD */
-#include "rigs/kit/stream.h"
+#include "stream.h"
 
-#include "rigs/kit/answers.h"
-#include "rigs/kit/bytes.h"
-#include "rigs/kit/greeting.h"
-#include "rigs/kit/words.h"
+#include "answers.h"
+#include "bytes.h"
+#include "greeting.h"
+#include "words.h"
 
 /* Offsets in a content: type (1), seq (2), then samples, or `at` (8) and the command's own fields. */
 #define SEQ 1

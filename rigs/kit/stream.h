@@ -5,7 +5,7 @@
 #ifndef HALFLSB_STREAM_H
 #define HALFLSB_STREAM_H
 
-#include "rigs/kit/frame.h"
+#include "frame.h"
 
 enum halflsb_type {
     HALFLSB_HELLO = 0x01,

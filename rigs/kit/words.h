@@ -5,7 +5,7 @@
 #ifndef HALFLSB_WORDS_H
 #define HALFLSB_WORDS_H
 
-#include "rigs/kit/halflsb_kit.h"
+#include "halflsb_kit.h"
 
 #ifndef HALFLSB_BIG_ENDIAN
 #if defined(__BYTE_ORDER__) && defined(__ORDER_BIG_ENDIAN__)
