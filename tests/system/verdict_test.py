@@ -4,12 +4,6 @@ import unittest
 from support import MOVING_AVERAGE, NOISE, STEP, Case, main
 import support
 
-FIR = """[[filter]]
-kind = "fir"
-taps_file = "{taps}"
-coefficient_fraction_bits = 15
-"""
-
 
 class Verdicts(Case):
     def run_with(self, *options, cases=NOISE, **plan):
@@ -102,20 +96,56 @@ class Verdicts(Case):
         self.assert_status(done, 0)
         self.assertEqual([case["name"] for case in self.record()["cases"]], ["step"])
 
-    def test_every_sample_format_of_the_board_travels(self):
-        """The board's own float and 32-bit filters, against the same design."""
-        listed = support.subprocess.run([str(support.VIRTUAL_BOARD), "--help"], capture_output=True, text=True).stdout
-        self.assertIn("--link", listed)
-        with self.virtual_board():
-            plan = self.plan(NOISE, board_filter="settle-q31", filter_text=self.settle(30),
-                             rules='[[rule]]\nkind = "error"\nmax_lsb = 200.0\n').read_text().replace('"q15"', '"q31"')
-            done = self.check(self.write("plan.toml", plan), self.rig())
-        self.assert_status(done, 0)
+    def design(self, kind, name, bits=None):
+        """A [[filter]] with the coefficients that the board's tables were made from."""
+        numbers = " ".join((support.ROOT / f"rigs/filters/coefficients/{name}.txt").read_text().split()).replace(" ", ", ")
+        key = "taps" if kind == "fir" else "sections"
+        values = [number for number in numbers.split(", ")]
+        if kind != "fir":
+            rows = [values[i:i + 5] for i in range(0, len(values), 5)]
+            numbers = ", ".join("[" + ", ".join(row) + "]" for row in rows)
+        fraction = "" if bits is None else f"coefficient_fraction_bits = {bits}\n"
+        return f'[[filter]]\nkind = "{kind}"\n{key} = [{numbers}]\n{fraction}'
 
-    def settle(self, bits):
-        numbers = (support.ROOT / "rigs/filters/coefficients/settle.txt").read_text().split()
-        rows = [numbers[i:i + 5] for i in range(0, len(numbers), 5)]
-        return '[[filter]]\nkind = "biquad-cascade"\nsections = [' + ", ".join("[" + ", ".join(row) + "]" for row in rows) + f"]\ncoefficient_fraction_bits = {bits}\n"
+    def test_every_sample_format_travels_and_is_judged_in_its_own_unit(self):
+        settle = self.design("biquad-cascade", "settle", 30)
+        for word, board_filter, text, limit in (
+            ("q31", "settle-q31", settle, "max_lsb = 200.0"),
+            ("i16", "average-i16", MOVING_AVERAGE, "max_lsb = 0.5"),
+            ("i32", "average-i32", MOVING_AVERAGE, "max_lsb = 0.5"),
+            ("f32", "settle-f32", self.design("biquad-cascade", "settle"), "max_ratio = 1e-4"),
+        ):
+            with self.subTest(word):
+                rules = f'[[rule]]\nkind = "error"\n{limit}\n'
+                plan = self.plan(NOISE, board_filter=board_filter, filter_text=text, rules=rules)
+                plan.write_text(plan.read_text().replace('"q15"', f'"{word}"'))
+                with self.virtual_board():
+                    done = self.check(plan, self.rig())
+                self.assert_status(done, 0)
+                self.assertIn(f"{word} in, {word} out", done.out)
+                self.cleanup_run()
+
+    def test_faults_of_fir_and_biquad_are_refused_and_the_right_board_is_not(self):
+        smoothing, quick = self.design("fir", "smoothing", 15), self.design("fir", "quick-smoothing", 15)
+        notch, settle = (self.design("biquad-cascade", name, 14) for name in ("mains-notch", "settle"))
+        quiet = NOISE.replace("0.9", "0.3")
+        # The overshoot of a full-scale step leaves the word: the place where wrapping shows.
+        rail = STEP.replace("0.5", "1.0")
+        for board_filter, text, cases, limit, faults in (
+            ("smoothing", smoothing, NOISE, 0.5, ("A01", "A02", "A04", "A05", "C03")),
+            ("smoothing", smoothing, rail, 0.5, ("A07",)),
+            ("quick-smoothing", quick, NOISE, 0.5, ("C10", "C05")),
+            # Limits of the biquads: half the L1 norm of each rounding's path, as in cortex_m4_test.
+            ("mains-notch", notch, quiet, 15.0, ("C03", "C05", "C07", "S11")),
+            ("settle", settle, quiet, 250.0, ("A04", "C05", "C07", "S11")),
+        ):
+            for fault in (None, *faults):
+                with self.subTest(f"{board_filter} {fault}"):
+                    rules = f'[[rule]]\nkind = "error"\nmax_lsb = {limit}\n'
+                    options = () if fault is None else ("--fault", fault)
+                    done, record = self.run_with(*options, cases=cases, board_filter=board_filter, filter_text=text, rules=rules)
+                    self.assert_status(done, 0 if fault is None else 1)
+                    self.cleanup_run()
 
     def cleanup_run(self):
         support.shutil.rmtree(self.folder / "run", ignore_errors=True)
