@@ -1,8 +1,6 @@
 """Results that cannot be written: exit 73, before the board is touched where that can be known, and nothing finished lost."""
 import os
-import pathlib
 import subprocess
-import unittest
 
 from support import NOISE, STEP, Case, halflsb, main
 import support

@@ -1,6 +1,4 @@
 """The main job on the virtual board: a healthy board passes, each fault is refused by the rule that should see it."""
-import unittest
-
 from support import MOVING_AVERAGE, NOISE, STEP, Case, main
 import support
 
