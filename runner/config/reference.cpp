@@ -16,8 +16,6 @@ namespace halflsb {
 
 namespace {
 
-constexpr std::string_view begin_marker = "<!-- reference: written by tests/runner/config/reference_test.cpp -->\n";
-constexpr std::string_view end_marker = "<!-- end of reference -->";
 
 std::string type_text(const Parameter& parameter) {
     switch (parameter.type) {
@@ -110,14 +108,6 @@ std::string rig_reference() {
            section("### `[link]`", link_recipe()) + section("### `[wire]`", wire_recipe()) +
            section("### `[commands]`", commands_recipe(),
                    row(before_run_word, "list of lists of text", "", "none", before_run_help));
-}
-
-std::string with_reference(std::string_view page, std::string_view reference) {
-    const std::size_t begin = page.find(begin_marker);
-    const std::size_t end = page.find(end_marker);
-    if (begin == std::string_view::npos || end == std::string_view::npos || end < begin) return std::string(page);
-    return std::string(page.substr(0, begin + begin_marker.size())) + "\n" + std::string(reference) +
-           std::string(page.substr(end));
 }
 
 }  // namespace halflsb

@@ -1,10 +1,10 @@
 #include "runner/cli/exit_status.hpp"
 
 #include <catch2/catch.hpp>
-#include <fstream>
 #include <iterator>
 
 #include "tests/runner/report/sample_run.hpp"
+#include "tests/support/generated_part.hpp"
 
 using namespace halflsb;
 
@@ -90,10 +90,6 @@ TEST_CASE("exit status: the table has every status once, ascending, each with a 
     CHECK(numbers == std::vector<int>{0, 1, 2, 3, 64, 65, 70, 73, 130});
 }
 
-TEST_CASE("exit status: docs/exit-status.md holds the table", "[cli]") {
-    std::ifstream file(HALFLSB_SOURCE_DIR "/docs/exit-status.md");
-    const std::string text(std::istreambuf_iterator<char>(file), {});
-    INFO("between the markers docs/exit-status.md must hold:\n" << exit_status_reference());
-    CHECK(text.find("<!-- generated: exit status -->\n" + exit_status_reference() + "<!-- end -->\n") !=
-          std::string::npos);
+TEST_CASE("exit status: docs/exit-status.md holds the table", "[cli][docs]") {
+    test::check_generated_part("exit-status.md", "exit status", exit_status_reference());
 }

@@ -1,12 +1,12 @@
 #include "runner/cli/options.hpp"
 
 #include <catch2/catch.hpp>
-#include <fstream>
 #include <iterator>
 #include <set>
 
 #include "runner/cli/exit_status.hpp"
 #include "runner/cli/help.hpp"
+#include "tests/support/generated_part.hpp"
 
 using namespace halflsb;
 
@@ -217,9 +217,6 @@ TEST_CASE("help: holds every command, option, status and example, in 80 columns"
     }
 }
 
-TEST_CASE("help: docs/command.md holds the reference of the tables", "[cli]") {
-    std::ifstream file(HALFLSB_SOURCE_DIR "/docs/command.md");
-    const std::string text(std::istreambuf_iterator<char>(file), {});
-    INFO("between the markers docs/command.md must hold:\n" << command_reference());
-    CHECK(text.find("<!-- generated: commands -->\n" + command_reference() + "<!-- end -->\n") != std::string::npos);
+TEST_CASE("help: docs/command.md holds the reference of the tables", "[cli][docs]") {
+    test::check_generated_part("command.md", "commands", command_reference());
 }

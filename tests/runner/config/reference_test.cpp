@@ -4,34 +4,16 @@
 #include "runner/config/reference.hpp"
 
 #include <catch2/catch.hpp>
-#include <cstdlib>
-#include <fstream>
 
 #include "oracle/filters/filter.hpp"
 #include "oracle/judge/rule.hpp"
 #include "stimuli/stimulus.hpp"
 #include "tests/support/config_texts.hpp"
+#include "tests/support/generated_part.hpp"
 
 using namespace halflsb;
 
 namespace {
-
-std::string page_text(const std::string& path) {
-    std::ifstream file(path, std::ios::binary);
-    return {std::istreambuf_iterator<char>(file), {}};
-}
-
-void check_page(const std::string& name, const std::string& reference) {
-    const std::string path = std::string(HALFLSB_SOURCE_DIR) + "/docs/" + name;
-    if (std::getenv("HALFLSB_UPDATE_DOCS") != nullptr) {
-        const std::string renewed = with_reference(page_text(path), reference);
-        std::ofstream(path, std::ios::binary) << renewed;
-    }
-    const std::string page = page_text(path);
-    INFO("renew it with HALFLSB_UPDATE_DOCS=1");
-    CHECK(page.find(reference) != std::string::npos);
-    CHECK(page == with_reference(page, reference));
-}
 
 /// The text between ```toml and ``` after `heading`.
 std::string sample_in(const std::string& page, const std::string& heading) {
@@ -45,15 +27,14 @@ std::string sample_in(const std::string& page, const std::string& heading) {
 }  // namespace
 
 TEST_CASE("docs: the pages of the plan and the rig hold the reference of the tables", "[config][docs]") {
-    check_page("plan.md", plan_reference());
-    check_page("rig.md", rig_reference());
+    test::check_generated_part("plan.md", "reference", plan_reference());
+    test::check_generated_part("rig.md", "reference", rig_reference());
 }
 
 TEST_CASE("docs: the samples of the pages are good", "[config][docs]") {
-    const std::string root = std::string(HALFLSB_SOURCE_DIR) + "/docs/";
-    const Plan plan = plan_of(sample_in(page_text(root + "plan.md"), "# The plan"));
+    const Plan plan = plan_of(sample_in(test::page_text("plan.md"), "# The plan"));
     CHECK(plan.cases.size() == 2);
-    const Rig rig = rig_of(sample_in(page_text(root + "rig.md"), "# The rig"));
+    const Rig rig = rig_of(sample_in(test::page_text("rig.md"), "# The rig"));
     CHECK(wants_image(rig));
 }
 
@@ -72,13 +53,4 @@ TEST_CASE("docs: the reference names every shape, filter, rule and key", "[confi
             }
         }
     }
-}
-
-TEST_CASE("docs: only what stands between the markers is replaced", "[config][docs]") {
-    const std::string page =
-        "a\n<!-- reference: written by tests/runner/config/reference_test.cpp -->\nold\n<!-- end of reference -->\nb\n";
-    CHECK(with_reference(page, "new\n") ==
-          "a\n<!-- reference: written by tests/runner/config/reference_test.cpp -->\n\nnew\n<!-- end of reference "
-          "-->\nb\n");
-    CHECK(with_reference("no markers", "new\n") == "no markers");
 }
