@@ -15,7 +15,7 @@ import time
 import unittest
 
 ROOT = pathlib.Path(__file__).resolve().parents[2]
-TREE = pathlib.Path(sys.argv[1]) if len(sys.argv) > 1 else ROOT / ".build" / "release"
+TREE = pathlib.Path(sys.argv[1]).resolve() if len(sys.argv) > 1 else ROOT / ".build" / "release"
 HALFLSB = TREE / "runner" / "halflsb"
 VIRTUAL_BOARD = TREE / "rigs" / "virtual-board" / "virtual-board"
 EMULATE = ROOT / "rigs" / "cortex-m4" / "emulate"
