@@ -1,7 +1,12 @@
 """The time of a whole `halflsb check`, from start to exit, beyond the time that its bytes take on the wire.
 
 On a paced line that time is known: bytes of the busier direction x 10 / baud. The emulated board ignores baud; there the
-same frames go through a bare echo firmware on the same emulator, with as many bytes in flight, right after each check.
+same frames go through a bare echo firmware on the same emulator, with as many blocks in flight, right after each check.
+
+The emulator hands each byte from one of its threads to the other. How long that takes depends on where the scheduler has
+put them and halves or doubles by chance, so both emulators are kept on one processor. What else the machine does only
+ever adds time: the fastest check is held against the fastest echo, and every pair is shown. (The best pair would be the
+one whose echo was disturbed.)
 """
 import collections
 import contextlib
@@ -23,7 +28,7 @@ from wire_host import SAMPLES, frame  # noqa: E402
 
 AT_MOST = 0.10
 BAUD, PACED_SAMPLES, PACED_RUNS = 921_600, 200_000, 3
-EMULATED_SAMPLES, PAIRS = 40_000, 5
+EMULATED_SAMPLES, PAIRS = 40_000, 7
 
 
 def timed_check(at, plan, rig):
@@ -86,25 +91,38 @@ def frames_of_a_check(samples, block):
     return made
 
 
+@contextlib.contextmanager
+def on_one_processor():
+    """What is started here stays there: children inherit it."""
+    allowed = os.sched_getaffinity(0)
+    os.sched_setaffinity(0, {min(allowed)})
+    try:
+        yield
+    finally:
+        os.sched_setaffinity(0, allowed)
+
+
 def on_the_emulated_board(figures):
-    ratios = []
+    checks, echoes = [], []
     with contextlib.ExitStack() as stack:
         at, echo = stack.enter_context(bench()), stack.enter_context(bench())
-        stack.enter_context(at.emulated_board("halflsb-cw7.elf"))
-        stack.enter_context(echo.emulated_board("halflsb-echo.elf"))
+        with on_one_processor():
+            stack.enter_context(at.emulated_board("halflsb-cw7.elf"))
+            stack.enter_context(echo.emulated_board("halflsb-echo.elf"))
         plan, rig = at.plan(noise_case(EMULATED_SAMPLES), filter_text=moving_average(16)), at.rig()
         for _ in range(PAIRS):
             seconds, record = timed_check(at, plan, rig)
             board, stream = record["board"], record["cases"][0]["stream"]
             frames = frames_of_a_check(EMULATED_SAMPLES, board["block_samples"])
             echoed = seconds_of_echo(echo.link, frames, board["credit_blocks"])
-            ratios.append(seconds / echoed - 1.0)
+            checks.append(seconds)
+            echoes.append(echoed)
             note(f"emulated: {seconds:.3f} s, {stream['streaming_s']:.3f} s of it streaming {stream['to_board_bytes']} bytes there and "
                  f"{stream['to_host_bytes']} back, {stream['resends']} resends; the echo of {sum(map(len, frames))} bytes took {echoed:.3f} s")
-    best = min(ratios)
+    share = min(checks) / min(echoes) - 1.0
+    pairs = ", ".join(f"{100 * (check / echoed - 1.0):.1f}" for check, echoed in zip(checks, echoes))
     figures.add(f"halflsb check beyond a bare echo of the same bytes, emulated board, {EMULATED_SAMPLES:,} samples", "< 10 %",
-                f"{100 * best:.1f} % (best of {PAIRS} interleaved pairs; all: {', '.join(f'{100 * r:.1f}' for r in ratios)})",
-                best < AT_MOST)
+                f"{100 * share:.1f} % (fastest check over fastest echo of {PAIRS} interleaved pairs; the pairs: {pairs})", share < AT_MOST)
 
 
 def main():

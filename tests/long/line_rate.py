@@ -1,7 +1,7 @@
 """The share of a paced line that `halflsb check` fills with samples, in blocks of 256.
 
 A line carries baud / 10 bytes a second, so baud / 20 samples of 16 bits; framing leaves 512 bytes of samples in 530
-(docs/wire.md, 5), 96.6 %. A machine busy with other things delays a program by more than the buffers of a pseudo-terminal
+(docs/wire.md, 5), 96.6 %, and a little more where a zero byte among the samples saves one. A machine busy with other things delays a program by more than the buffers of a pseudo-terminal
 hold, which no line would; so it is the best of three runs, and every run is shown.
 """
 from measure import Figures, bench, moving_average, noise_case, note, passed_run, virtual_board
