@@ -50,6 +50,25 @@ void check_arbitrary_bytes(std::span<const std::byte> line, std::size_t max_cont
     fuzz::require(whole.good + whole.bad <= delimiters, "no frame without its delimiter");
 }
 
+/// What is taken for a frame is the encoding of what it is taken for; a final full group may have a 0x01
+/// behind it (docs/wire.md, 1).
+void check_accepted_frames(std::span<const std::byte> line) {
+    constexpr std::size_t full_group_bytes = 255;
+    for (auto end = std::find(line.begin(), line.end(), std::byte{0}); end != line.end();
+         end = std::find(line.begin(), line.end(), std::byte{0})) {
+        const std::span<const std::byte> frame = line.first(static_cast<std::size_t>(end - line.begin()) + 1);
+        line = line.subspan(frame.size());
+        const Decoded alone = decode(frame, frame.size(), 0);
+        if (alone.good == 0) continue;
+        Bytes again;
+        append_frame(again, alone.types[0], alone.bodies[0]);
+        if (again.size() + 1 == frame.size() && again.size() > full_group_bytes)
+            again.insert(again.end() - 1, std::byte{1});
+        fuzz::require(std::equal(again.begin(), again.end(), frame.begin(), frame.end()),
+                      "encode(decode(frame)) = frame");
+    }
+}
+
 void check_round_trip(std::span<const std::byte> garbage, std::uint8_t type, std::span<const std::byte> body) {
     Bytes frame;
     append_frame(frame, type, body);
@@ -80,6 +99,7 @@ extern "C" int LLVMFuzzerTestOneInput(const std::uint8_t* data, std::size_t size
     const std::size_t max_content_bytes = std::size_t{data[0]} * 5, piece = std::size_t{data[1]} + 1;
     const std::span<const std::byte> rest = fuzz::bytes_of(data + 3, size - 3);
     check_arbitrary_bytes(rest, max_content_bytes, piece);
+    check_accepted_frames(rest);
     const std::size_t cut = std::min(piece - 1, rest.size());
     check_round_trip(rest.first(cut), data[2], rest.subspan(cut));
     return 0;
