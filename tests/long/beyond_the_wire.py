@@ -28,7 +28,7 @@ from wire_host import SAMPLES, frame  # noqa: E402
 
 AT_MOST = 0.10
 BAUD, PACED_SAMPLES, PACED_RUNS = 921_600, 200_000, 3
-EMULATED_SAMPLES, PAIRS = 40_000, 7
+EMULATED_SAMPLES, PAIRS = 40_000, 11
 
 
 def timed_check(at, plan, rig):

@@ -5,13 +5,12 @@
 // The response is an integer moving average made here, right but for its last sample, which is one LSB too
 // high. So the first bad sample must be the last one: all before it were looked at and found right, and the
 // last was looked at too.
-#include <sys/resource.h>
-
 #include <algorithm>
 #include <array>
 #include <cstdint>
 #include <cstdio>
 #include <cstdlib>
+#include <fstream>
 #include <string>
 #include <utility>
 #include <vector>
@@ -26,15 +25,20 @@ constexpr std::int64_t first_look_samples = 1'000'000;
 constexpr std::size_t points = 16, block_samples = 256;
 constexpr double most_growth_mib = 4.0;
 
-double peak_mib() {
-    rusage used{};
-    getrusage(RUSAGE_SELF, &used);
-    return static_cast<double>(used.ru_maxrss) / 1024.0;  // Linux counts in KiB
-}
-
 [[noreturn]] void give_up(const std::string& why) {
     std::fprintf(stderr, "constant_memory: %s\n", why.c_str());
     std::exit(1);
+}
+
+/// Of this program's own memory. Not getrusage(): its peak is that of the process before exec, too, and a
+/// large parent would hide growth.
+double peak_mib() {
+    std::ifstream status("/proc/self/status");
+    for (std::string word; status >> word;) {
+        double kib = 0.0;
+        if (word == "VmHWM:" && status >> kib) return kib / 1024.0;
+    }
+    give_up("/proc/self/status tells no peak");
 }
 
 template <class T>

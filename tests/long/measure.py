@@ -11,6 +11,7 @@ import sys
 import tempfile
 
 sys.path.insert(0, str(pathlib.Path(__file__).resolve().parents[1] / "system"))
+sys.argv[1:2] = [str(pathlib.Path(word).absolute()) for word in sys.argv[1:2]]  # halflsb runs in other folders
 import support  # noqa: E402  it takes BUILD_TREE from the command line
 
 BITS_PER_BYTE = 10  # start, 8 data, stop
