@@ -20,6 +20,7 @@ public:
         : bytes_(bytes), is_64_(is_64), is_big_endian_(is_big_endian) {}
 
     bool is_64() const { return is_64_; }
+    std::uint64_t size() const { return bytes_.size(); }
     std::optional<std::uint64_t> number(std::uint64_t offset, unsigned size) const {
         if (offset > bytes_.size() || size > bytes_.size() - offset) return std::nullopt;
         std::uint64_t value = 0;
@@ -52,10 +53,9 @@ std::string hex(std::string_view bytes) {
     return text;
 }
 
-/// Notes are {name size, description size, type, name, description}, each padded to 4 bytes.
+/// Notes are {name size, description size, type, name, description}, each padded to 4 bytes. They must lie in the file.
 std::optional<std::string> build_id_in_notes(const ElfBytes& elf, std::uint64_t offset, std::uint64_t size) {
     const auto padded = [](std::uint64_t n) { return (n + 3) & ~std::uint64_t{3}; };
-    if (!elf.part(offset, size)) return std::nullopt;
     const std::uint64_t end = offset + size;
     constexpr std::uint64_t header_bytes = 12;
     while (end - offset >= header_bytes) {
@@ -94,11 +94,19 @@ std::optional<std::string> build_id_in_table(const ElfBytes& elf, const HeaderTa
         is_whole = false;
         return std::nullopt;
     }
+    // Notes of one table do not overlap, so together they are no longer than the file: one that says otherwise would
+    // have the same bytes searched up to 65535 times.
+    std::uint64_t left_bytes = elf.size();
     for (std::uint64_t i = 0; i < *count; ++i) {
         const std::uint64_t entry = *start + i * *entry_size;
         if (elf.number(entry + table.type_at, 4) != table.note_type) continue;
         const auto offset = elf.word(entry + table.offset_at), size = elf.word(entry + table.size_at);
-        if (!offset || !size) continue;
+        if (!offset || !size || !elf.part(*offset, *size)) continue;
+        if (*size > left_bytes) {
+            is_whole = false;
+            return std::nullopt;
+        }
+        left_bytes -= *size;
         if (auto id = build_id_in_notes(elf, *offset, *size)) return id;
     }
     return std::nullopt;

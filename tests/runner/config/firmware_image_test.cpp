@@ -121,6 +121,15 @@ TEST_CASE("firmware image: no damage is read out of bounds", "[config]") {
     }
 }
 
+TEST_CASE("firmware image: a table whose notes overlap is damaged, and not searched for minutes", "[config]") {
+    Elf elf{true, false, true, std::string(std::size_t{4} << 20, '\0')};
+    std::string bytes = elf.bytes();
+    bytes.replace(58, 4, std::string("\0\0\xff\xff", 4));  // 65535 sections of 0 bytes: each is the first one
+    const auto id = build_id_of(bytes);
+    REQUIRE(!id);
+    CHECK(id.error().problem == "its ELF headers are damaged or cut off");
+}
+
 TEST_CASE("firmware image: the file is named", "[config]") {
     FakeFiles files;
     files.contents["fw.elf"] = elf_with_id(false, false, false).bytes();
