@@ -36,6 +36,9 @@ void check_latency(const Plan& plan, const Case& the_case, const Rule& rule, std
     refusal.problem = "case \"" + the_case.name + "\" cannot tell its latency: a lag of " +
                       std::to_string(evidence.hardest_lag) + " would leave a squared residual of " +
                       brief(evidence.smallest_ratio) + " sigma^2, below " + brief(latency_evidence_ratio);
+    if (the_case.stimulus->length_samples() > latency_evidence_samples) {
+        refusal.problem += ", in its first " + std::to_string(latency_evidence_samples) + " samples";
+    }
     refusal.remedy =
         noise_can_tell(plan, the_case)
             ? "give it noise (shape = \"noise\", level_ratio = 0.5, length_samples = " +

@@ -120,7 +120,7 @@ Outcome<CaseJudgement> CaseJudge::finish(const ResponseReplay& replay) {
 }
 
 LatencyEvidence latency_evidence(const Plan& plan, const Case& the_case) {
-    const std::int64_t length = the_case.stimulus->length_samples();
+    const std::int64_t length = std::min(the_case.stimulus->length_samples(), latency_evidence_samples);
     const double sigma = latency_sigma(the_case, plan.signal);
     LagDiscrimination discrimination(lag_window_for(length));
     ReferenceSource reference(plan, the_case, false);

@@ -51,9 +51,13 @@ private:
     std::vector<double> response_values_;
 };
 
+/// How far into a case the evidence is looked for on paper: a stimulus that is silent for longer would
+/// hold up the reading of its plan.
+inline constexpr std::int64_t latency_evidence_samples = std::int64_t{1} << 22;
+
 /// Whether the reference of a case can tell its latency at all (design 2): every other lag in the
-/// window would leave a squared residual of at least 130 sigma^2. Costs one pass of the reference,
-/// less when it can tell early.
+/// window would leave a squared residual of at least 130 sigma^2, within the first
+/// latency_evidence_samples. Costs a pass of the reference over these, less when it can tell early.
 struct LatencyEvidence {
     bool can_tell = false;
     double smallest_ratio = 0.0;  ///< min over k of sum (r[n-k] - r[n])^2 / sigma^2

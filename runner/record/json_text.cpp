@@ -47,10 +47,12 @@ void append(std::string& out, const Json& value, std::size_t level) {
 
 }  // namespace
 
-std::string json_text(const Json& document) {
+std::string json_value_text(const Json& value, std::size_t level) {
     std::string out;
-    append(out, document, 0);
-    return out + "\n";
+    append(out, value, level);
+    return out;
 }
+
+std::string json_text(const Json& document) { return json_value_text(document, 0) + "\n"; }
 
 }  // namespace halflsb

@@ -87,7 +87,7 @@ Outcome<void> RunFolder::save_inputs(const std::string& plan_text, const std::st
 }
 
 Outcome<void> RunFolder::save(const RunResult& run, bool finished, const std::string& junit_xml) {
-    if (auto written = files_->write(path_of("run.json"), run_json(run, finished)); !written) return written;
+    if (auto written = files_->write(path_of("run.json"), json_.document(run, finished)); !written) return written;
     return files_->write(path_of("junit.xml"), junit_xml);
 }
 

@@ -9,6 +9,7 @@
 #include <string>
 #include <string_view>
 
+#include "runner/record/run_json.hpp"
 #include "runner/world/files.hpp"
 #include "runner/world/result.hpp"
 
@@ -37,6 +38,7 @@ private:
 
     Files* files_;
     std::string path_;
+    GrowingRunJson json_;
 };
 
 /// Makes the folder and proves that a file can be written in it. A default folder that exists gets

@@ -148,11 +148,16 @@ Json case_json(const CaseResult& result, const Signal& signal) {
 
 }  // namespace
 
-std::string run_json(const RunResult& run, bool finished) {
+std::string run_json(const RunResult& run, bool finished) { return GrowingRunJson().document(run, finished); }
+
+std::string GrowingRunJson::document(const RunResult& run, bool finished) {
     const Counts counts = run.counts();
-    Json cases = Json::array();
-    for (const CaseResult& result : run.cases) cases.push_back(case_json(result, run.signal));
-    const Json document = {
+    constexpr std::size_t case_level = 2;
+    while (case_texts_.size() < run.cases.size()) {
+        case_texts_.push_back(json_value_text(case_json(run.cases[case_texts_.size()], run.signal), case_level));
+    }
+    // Everything but the cases, which stand last and are put in as text.
+    const Json frame = {
         {"format", "halflsb run"},
         {"format_version", run_json_version},
         {"tool_version", run.tool_version},
@@ -176,9 +181,15 @@ std::string run_json(const RunResult& run, bool finished) {
         {"ended_by", error_json(run.ended_by)},
         {"warnings", run.warnings},
         {"cases_planned", run.cases_planned},
-        {"cases", std::move(cases)},
+        {"cases", Json::array()},
     };
-    return json_text(document);
+    std::string whole = json_text(frame);
+    if (case_texts_.empty()) return whole;
+    const std::string_view empty_end = "[]\n}\n";
+    whole.resize(whole.size() - empty_end.size());
+    const std::string indent(2 * case_level, ' ');
+    for (std::size_t i = 0; i < case_texts_.size(); ++i) whole += (i == 0 ? "[\n" : ",\n") + indent + case_texts_[i];
+    return whole + "\n  ]\n}\n";
 }
 
 }  // namespace halflsb

@@ -2,6 +2,7 @@
 #pragma once
 
 #include <string>
+#include <vector>
 
 #include "runner/world/result.hpp"
 
@@ -12,5 +13,15 @@ inline constexpr int run_json_version = 1;
 /// The whole document. `finished` is false while cases are still to come; a reader that finds it
 /// false in a folder nobody writes to knows that the program died.
 std::string run_json(const RunResult& run, bool finished);
+
+/// The same again and again while a run grows: a case that was written once is not rendered again, so a
+/// thousand cases cost a thousand renderings, not half a million. Finished cases must not change.
+class GrowingRunJson {
+public:
+    std::string document(const RunResult& run, bool finished);
+
+private:
+    std::vector<std::string> case_texts_;
+};
 
 }  // namespace halflsb

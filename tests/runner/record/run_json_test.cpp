@@ -164,3 +164,18 @@ TEST_CASE("json text: plain arrays stand on one line, others are indented", "[re
     CHECK(json_text(Json{{"a", {1, 2.5, nullptr}}, {"b", Json::array({Json::object()})}, {"c", Json::array()}}) ==
           "{\n  \"a\": [1, 2.5, null],\n  \"b\": [\n    {}\n  ],\n  \"c\": []\n}\n");
 }
+
+TEST_CASE("run.json: written while the run grows it is the same as written at once", "[record]") {
+    const RunResult whole = sample::run();
+    REQUIRE(whole.cases.size() >= 2);
+    RunResult run = whole;
+    run.cases.clear();
+    GrowingRunJson growing;
+    CHECK(growing.document(run, false) == run_json(run, false));
+    for (const CaseResult& result : whole.cases) {
+        run.cases.push_back(result);
+        CHECK(growing.document(run, false) == run_json(run, false));
+        CHECK(Json::parse(growing.document(run, true)).at("cases").size() == run.cases.size());
+    }
+    CHECK(growing.document(whole, true) == run_json(whole, true));
+}
