@@ -116,7 +116,7 @@ int check_command(const Options& options, const Desk& desk) {
         (void)desk.terminal.write(Stream::err, problem + (problem.ends_with('\n') ? "" : "\n"));
     if (!problems.empty()) return exit_status_of(Error{ErrorKind::input, "", "", ""});
     if (!request) return tell(request.error(), options, desk);
-    if (auto watching = watch_for_interrupts(); !watching) return tell(watching.error(), options, desk);
+    if (interrupted()) return tell(interrupted_error(options.plan), options, desk);
 
     Reporter reporter(desk, options);
     const RunResult run = run_plan(*request, desk.files, desk.clock, reporter);

@@ -18,6 +18,17 @@ int tell(const Error& error, const Options& options, const Desk& desk) {
     return exit_status_of(error);
 }
 
+Outcome<void> check_log_path(const Options& options, const Files& files) {
+    if (!options.log_file) return {};
+    const std::string log = files.resolved(*options.log_file);
+    for (const std::string& input : {options.plan, options.rig, options.image.value_or("")}) {
+        if (log.empty() || input.empty() || files.resolved(input) != log) continue;
+        return Error{ErrorKind::usage, "--log", "it would replace " + printable(input),
+                     "give the log a name of its own"};
+    }
+    return {};
+}
+
 int ports_command(const Desk& desk) {
     const auto ports = list_ports();
     if (!ports) return tell(ports.error(), {}, desk);

@@ -20,6 +20,9 @@ int check_command(const Options& options, const Desk& desk);
 int predict_command(const Options& options, const Desk& desk);
 int ports_command(const Desk& desk);
 
+/// Refuses a --log that would replace the plan, the rig or the image.
+Outcome<void> check_log_path(const Options& options, const Files& files);
+
 /// The style of a stream: colour, width and signs that it takes.
 TextStyle style_of(const Terminal& terminal, Stream stream, ColourWish wish);
 /// An error to standard error; its exit status.

@@ -12,6 +12,7 @@
 #include "runner/config/rig_file.hpp"
 #include "runner/report/people.hpp"
 #include "runner/wire/wire_cost.hpp"
+#include "runner/world/interrupt.hpp"
 #include "runner/world/printable.hpp"
 
 namespace halflsb {
@@ -122,6 +123,7 @@ int predict_command(const Options& options, const Desk& desk) {
     for (const Case& the_case : known.cases) names.push_back(the_case.name);
     const auto selected = select_cases(names, options.case_patterns);
     if (!selected) return tell(selected.error(), options, desk);
+    if (interrupted()) return tell(interrupted_error(options.plan), options, desk);
 
     const TextStyle style = style_of(desk.terminal, Stream::out, options.colour);
     std::string text = printable(known.title) + " (" + printable(known.file) + "), on paper\n";

@@ -25,9 +25,14 @@ std::string shell_quoted(const std::string& word) {
     return quoted + "'";
 }
 
+/// A name that looks like an option must not be taken for one.
+std::string case_option(const std::string& name) {
+    return name.starts_with('-') ? shell_quoted("--case=" + name) : "--case " + shell_quoted(name);
+}
+
 std::string rerun_command(const RunRequest& request, const std::string& case_name) {
     std::string command = "halflsb check " + shell_quoted(request.plan.file) + " --rig " +
-                          shell_quoted(request.rig.file) + " --case " + shell_quoted(case_name);
+                          shell_quoted(request.rig.file) + " " + case_option(case_name);
     if (request.seed) command += " --seed " + std::to_string(*request.seed);
     if (request.root) command += " --root " + shell_quoted(*request.root);
     if (request.image) command += " --image " + shell_quoted(request.image->file);
@@ -122,6 +127,8 @@ RunResult run_plan(const RunRequest& request, Files& files, const Clock& clock, 
     observer.starting(run);
     for (const std::string& warning : run.warnings) observer.warning(warning);
     if (auto saved = folder->save_inputs(run.plan_text, run.rig_text); !saved) run.ended_by = saved.error();
+    // From now on a program that dies leaves a record that says so.
+    if (auto saved = folder->save(run, false, junit_report(run)); !saved && !run.ended_by) run.ended_by = saved.error();
     if (!run.ended_by) {
         if (auto ran = run_cases(request, run, *folder, files, clock, observer); !ran) run.ended_by = ran.error();
     }

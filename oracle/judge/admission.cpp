@@ -36,8 +36,8 @@ void check_latency(const Plan& plan, const Case& the_case, const Rule& rule, std
     refusal.problem = "case \"" + the_case.name + "\" cannot tell its latency: a lag of " +
                       std::to_string(evidence.hardest_lag) + " would leave a squared residual of " +
                       brief(evidence.smallest_ratio) + " sigma^2, below " + brief(latency_evidence_ratio);
-    if (the_case.stimulus->length_samples() > latency_evidence_samples) {
-        refusal.problem += ", in its first " + std::to_string(latency_evidence_samples) + " samples";
+    if (the_case.stimulus->length_samples() > latency_evidence_samples(plan.filter)) {
+        refusal.problem += ", in its first " + std::to_string(latency_evidence_samples(plan.filter)) + " samples";
     }
     refusal.remedy =
         noise_can_tell(plan, the_case)
@@ -54,7 +54,7 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
     if (spectrum.tones.empty() && spectrum.to_cycles_per_sample <= 0.0) {
         refusals.push_back(
             {rule.position,
-             "case \"" + the_case.name + "\" cannot answer a response rule: a " + the_case.shape + " has no flat power",
+             "case \"" + the_case.name + "\" cannot answer a response rule, which is not for a " + the_case.shape,
              "use noise, a chirp, a sine or a multitone"});
         return;
     }

@@ -1,6 +1,9 @@
 #include "oracle/judge/case_judge.hpp"
 
 #include <algorithm>
+#include <bit>
+#include <cmath>
+#include <cstdlib>
 
 #include "oracle/judge/units.hpp"
 
@@ -80,7 +83,11 @@ Outcome<CaseJudgement> CaseJudge::finish(const ResponseReplay& replay) {
     } else {
         const LagFigures lags = lag_.value();
         const int measured = lags.best_lag;
-        if (measured == expected_lag_) {
+        if (!std::isfinite(lags.residual_at(measured))) {
+            // One NaN or infinity makes every lag equally bad: none of them is right.
+            latency = latency_verdict(*latency_rule_, measured, expected_lag_, Verdict::undecided,
+                                      "the response holds a value that is not a finite number, so it fits at no lag");
+        } else if (measured == expected_lag_) {
             latency = latency_verdict(*latency_rule_, measured, expected_lag_, Verdict::pass, {});
         } else {
             AlignedPass second(plan_, case_, measured);
@@ -94,7 +101,8 @@ Outcome<CaseJudgement> CaseJudge::finish(const ResponseReplay& replay) {
             const bool clear = lags.residual_at(measured) * 100.0 <= lags.residual_at(expected_lag_);
             if (clear || (second.has_error_rules() && second.error_rules_pass())) {
                 latency = latency_verdict(*latency_rule_, measured, expected_lag_, Verdict::fail,
-                                          "the response is " + samples_text(measured) + " behind the reference");
+                                          "the response is " + samples_text(measured) + " behind the reference" +
+                                              (std::abs(measured) == lags.window ? ", or more: the window ends there" : ""));
                 verdicts = second.verdicts();
                 for (RuleVerdict& verdict : verdicts) {
                     const std::string note = "judged at the measured lag of " + samples_text(measured);
@@ -119,8 +127,18 @@ Outcome<CaseJudgement> CaseJudge::finish(const ResponseReplay& replay) {
     return judgement;
 }
 
+std::int64_t latency_evidence_samples(const FilterChain& filter) {
+    std::uint64_t operations_a_sample = 2 * lag_window_samples + 1;
+    for (const FilterStage& stage : filter) {
+        if (const auto* fir = std::get_if<Fir>(&stage.design)) operations_a_sample += fir->taps.size();
+        if (const auto* cascade = std::get_if<BiquadCascade>(&stage.design)) operations_a_sample += 5 * cascade->sections.size();
+    }
+    constexpr std::uint64_t operations = std::uint64_t{1} << 30, fewest = std::uint64_t{1} << 14, most = std::uint64_t{1} << 22;
+    return static_cast<std::int64_t>(std::clamp(std::bit_floor(operations / operations_a_sample), fewest, most));
+}
+
 LatencyEvidence latency_evidence(const Plan& plan, const Case& the_case) {
-    const std::int64_t length = std::min(the_case.stimulus->length_samples(), latency_evidence_samples);
+    const std::int64_t length = std::min(the_case.stimulus->length_samples(), latency_evidence_samples(plan.filter));
     const double sigma = latency_sigma(the_case, plan.signal);
     LagDiscrimination discrimination(lag_window_for(length));
     ReferenceSource reference(plan, the_case, false);

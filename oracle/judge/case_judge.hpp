@@ -51,9 +51,9 @@ private:
     std::vector<double> response_values_;
 };
 
-/// How far into a case the evidence is looked for on paper: a stimulus that is silent for longer would
-/// hold up the reading of its plan.
-inline constexpr std::int64_t latency_evidence_samples = std::int64_t{1} << 22;
+/// How far into a case the evidence is looked for on paper, about a second of work: a stimulus that is
+/// silent for longer would hold up the reading of its plan. 2^22 samples, fewer for long filters.
+std::int64_t latency_evidence_samples(const FilterChain& filter);
 
 /// Whether the reference of a case can tell its latency at all (design 2): every other lag in the
 /// window would leave a squared residual of at least 130 sigma^2, within the first

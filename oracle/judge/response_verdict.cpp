@@ -45,7 +45,7 @@ JudgedFigure held(const Extreme& extreme, double limit_db, bool at_least, const 
         figure.value = gain_db;
         figure.margin = judged(at_least ? gain_db - *figure.limit : *figure.limit - gain_db);
     } else {
-        figure.note += ", no output there";
+        figure.note += std::isnan(gain_db) ? ", the response is not a number" : ", no output there";
     }
     return figure;
 }

@@ -90,7 +90,7 @@ Outcome<Diagnostics> Diagnostics::start(Terminal& terminal, bool verbose, const 
         line_sink([&terminal](const std::string& line) { (void)static_cast<bool>(terminal.write(Stream::err, line)); },
                   verbose ? spdlog::level::debug : spdlog::level::warn, verbose ? "%H:%M:%S.%e %v" : "%v"));
     if (log_file) {
-        const int descriptor = ::open(log_file->c_str(), O_WRONLY | O_CREAT | O_TRUNC | O_NOCTTY | O_CLOEXEC, 0666);
+        const int descriptor = ::open(log_file->c_str(), O_WRONLY | O_CREAT | O_TRUNC | O_NOCTTY | O_NONBLOCK | O_CLOEXEC, 0666);
         if (descriptor < 0) {
             return Error{ErrorKind::output, *log_file,
                          "the log file cannot be opened: " + std::string(std::strerror(errno)),

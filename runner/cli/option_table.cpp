@@ -33,8 +33,10 @@ std::string take_seed(Options& options, const std::string& argument) {
     std::uint64_t seed = 0;
     const char* const end = argument.data() + argument.size();
     const auto [stop, error] = std::from_chars(argument.data(), end, seed);
-    if (error != std::errc() || stop != end) {
-        return quoted(argument) + " is not a whole number from 0 to 18446744073709551615";
+    // A seed may stand in plans and JSON too, whose readers keep whole numbers up to 2^53.
+    constexpr std::uint64_t largest_seed = (std::uint64_t{1} << 53) - 1;
+    if (error != std::errc() || stop != end || seed > largest_seed) {
+        return quoted(argument) + " is not a whole number from 0 to " + std::to_string(largest_seed);
     }
     options.seed = seed;
     return "";

@@ -14,6 +14,8 @@ using Json = nlohmann::ordered_json;
 
 Json number(std::optional<double> value) { return value && std::isfinite(*value) ? Json(*value) : Json(nullptr); }
 
+Json count(std::optional<std::uint32_t> value) { return value ? Json(*value) : Json(nullptr); }
+
 /// What was not given is null, not "".
 Json text(std::string_view value) { return value.empty() ? Json(nullptr) : Json(value); }
 
@@ -116,9 +118,9 @@ Json stream_json(const StreamFacts& stream) {
             {"to_board_bytes", stream.bytes_to_board},
             {"to_host_bytes", stream.bytes_to_host},
             {"bad_frames_at_host", stream.frames_bad_at_host},
-            {"bad_frames_at_board", stream.frames_bad_at_board},
-            {"lost_at_board_bytes", stream.bytes_lost_at_board},
-            {"gaps_at_board", stream.gaps_at_board},
+            {"bad_frames_at_board", count(stream.frames_bad_at_board)},
+            {"lost_at_board_bytes", count(stream.bytes_lost_at_board)},
+            {"gaps_at_board", count(stream.gaps_at_board)},
             {"resends", stream.resends},
             {"streaming_s", number(stream.streaming_s)},
             {"line_use_ratio", number(stream.line_use_ratio)},

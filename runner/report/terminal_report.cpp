@@ -89,6 +89,13 @@ std::string case_line(const RunResult& run, std::size_t index, const TextStyle& 
     return line + "\n" + wrapped(style, brief, columns_of(place) + 2);
 }
 
+std::string board_counters_text(const StreamFacts& stream) {
+    if (!stream.frames_bad_at_board) return "the board could not be asked for its counters";
+    return "at the board " + counted(*stream.frames_bad_at_board, "bad frame", "bad frames") + ", " +
+           counted(stream.bytes_lost_at_board.value_or(0), "byte", "bytes") + " lost, " +
+           counted(stream.gaps_at_board.value_or(0), "gap", "gaps");
+}
+
 std::string invalid_block(const CaseResult& result, const TextStyle& style) {
     std::string out;
     if (result.invalid) {
@@ -99,12 +106,9 @@ std::string invalid_block(const CaseResult& result, const TextStyle& style) {
     const StreamFacts& stream = result.stream;
     out += wrapped(style,
                    "capture " + std::string(name_of(result.grade)) + ": " + count_text(stream.samples_received) +
-                       " of " + counted(stream.samples_sent, "sample", "samples") + " sent came back; bad frames " +
-                       std::to_string(stream.frames_bad_at_host) + " here and " +
-                       std::to_string(stream.frames_bad_at_board) + " at the board, " +
-                       std::to_string(stream.bytes_lost_at_board) + " bytes lost and " +
-                       std::to_string(stream.gaps_at_board) + " gaps at the board, " +
-                       counted(stream.resends, "resend", "resends"),
+                       " of " + counted(stream.samples_sent, "sample", "samples") + " sent came back; " +
+                       counted(stream.frames_bad_at_host, "bad frame", "bad frames") + " here, " +
+                       counted(stream.resends, "resend", "resends") + "; " + board_counters_text(stream),
                    2);
     return out;
 }
@@ -182,7 +186,12 @@ std::string summary_text(const RunResult& run, const TextStyle& style) {
     if (!run.latency_verified())
         out += wrapped(style, "latency not verified: no case that ran could tell its latency", 0);
     if (run.firmware.state != FirmwareCheck::State::agrees) {
-        out += wrapped(style, "firmware not verified: --image FILE compares the board's build-id with a file's", 0);
+        out += wrapped(style,
+                       run.firmware.image_file.empty()
+                           ? "firmware not verified: --image FILE compares the board's build-id with a file's"
+                           : "firmware not verified: the board was not seen to run " +
+                                 printable(run.firmware.image_file),
+                       0);
     }
     // Not wrapped: a path is copied as one line.
     if (!run.folder.empty()) out += "run folder: " + printable(run.folder) + "\n";

@@ -96,7 +96,8 @@ private:
     std::size_t outgoing_done_ = 0;
     message::Bytes incoming_;
     message::Bytes body_;  ///< scratch
-    std::size_t largest_content_ = message::largest_page_content_bytes;
+    /// Answers of a stream before may still come when the board is greeted: they are whole frames too.
+    std::size_t largest_content_ = message::largest_stream_content_bytes;
     FrameDecoder decoder_;
     Arrivals arrivals_;
     const Question* question_ = nullptr;

@@ -38,7 +38,8 @@ struct StreamFacts {
     std::int64_t samples_sent = 0, samples_received = 0;
     std::int64_t bytes_to_board = 0, bytes_to_host = 0;
     std::int64_t frames_bad_at_host = 0, resends = 0;
-    std::uint32_t frames_bad_at_board = 0, bytes_lost_at_board = 0, gaps_at_board = 0;
+    /// The board's own counters; none when it was not or could not be asked.
+    std::optional<std::uint32_t> frames_bad_at_board, bytes_lost_at_board, gaps_at_board;
     double streaming_s = 0.0;
     /// Bytes of the busier direction x 10 / baud, over streaming_s; none where baud has no meaning.
     std::optional<double> line_use_ratio;

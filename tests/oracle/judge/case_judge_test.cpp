@@ -229,6 +229,25 @@ TEST_CASE("case judge: NaN from a float board never passes", "[judge]") {
     CHECK(judgement.rules[0].verdict == Verdict::fail);
     REQUIRE(judgement.rules[0].first_bad);
     CHECK(judgement.rules[0].first_bad->index == 1234);
+    CHECK(judgement.rules[1].verdict == Verdict::undecided);
+}
+
+TEST_CASE("case judge: a value that is not a number never verifies a latency", "[judge]") {
+    Plan plan = test::moving_average_plan(4);
+    plan.signal.input = *sample_format("f32");
+    plan.signal.output = *sample_format("f32");
+    const Case the_case = test::a_case(plan, "noise", noise, {test::implicit_latency()});
+    const auto right = test::right_response(plan, the_case);
+    for (const Code bits : {Code{0x7fc00000}, Code{0x7f800000}, static_cast<Code>(0xff800000U)}) {
+        for (const int lag : {0, 3}) {
+            auto response = delayed(right, lag);
+            response[500] = bits;
+            const CaseJudgement judgement = judge(plan, the_case, response);
+            CHECK(verdict_of(judgement.rules) == CaseVerdict::undecided);
+            CHECK(judgement.rules[0].reason ==
+                  "the response holds a value that is not a finite number, so it fits at no lag");
+        }
+    }
 }
 
 TEST_CASE("case judge: gain against bands, from noise, chirp and multitone, on both sides of the limit", "[judge]") {
@@ -242,7 +261,9 @@ TEST_CASE("case judge: gain against bands, from noise, chirp and multitone, on b
                               {"level_ratio", 0.9},
                               {"length_samples", std::int64_t{40960}}})},
     };
-    for (const auto& [shape, given] : stimuli) {
+    for (const auto& stimulus : stimuli) {
+        const std::string& shape = stimulus.first;
+        const ParameterValues& given = stimulus.second;
         INFO(shape);
         const auto verdict = [&](double min_db, double max_db) {
             const Rule rule =
