@@ -1,4 +1,4 @@
-"""An emulated PC with a USB host controller: boots the kernel, runs commands in it, plugs and unplugs adapters."""
+"""An emulated PC with a USB host controller and serial ports of its own: boots the kernel, runs commands in it, plugs and unplugs adapters."""
 import base64
 import ctypes
 import json
@@ -70,6 +70,7 @@ class Machine:
                    "-append", "console=ttyS0 panic=-1 quiet loglevel=6 random.trust_cpu=on",
                    "-serial", f"file:{folder / 'kernel.log'}",
                    "-serial", f"unix:{folder / 'console'},server=on,wait=off",
+                   "-serial", f"unix:{folder / 'uart'},server=on,wait=off",
                    "-qmp", f"unix:{folder / 'qmp'},server=on,wait=off",
                    "-device", "qemu-xhci,id=usb", "-D", folder / "adapter.log", "-trace", "usb_serial_*"]
         for number in range(adapters):
@@ -92,6 +93,10 @@ class Machine:
 
     def line_path(self, number):
         return self.folder / f"line{number}"
+
+    def uart_path(self):
+        """The far end of the PC's own third port, /dev/ttyS2."""
+        return self.folder / "uart"
 
     def _connect(self, name, limit_s=30.0):
         until = time.monotonic() + limit_s

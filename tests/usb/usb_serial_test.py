@@ -83,6 +83,7 @@ length_samples = {second_samples}
 def files():
     found = {f"root/{name}-{baud}.toml": rig(port, baud) for baud in BAUDS for name, port in (("any", ANY), ("a", A), ("b", B))}
     found |= {f"root/ttyUSB{n}.toml": rig(f"/dev/ttyUSB{n}") for n in range(2)}
+    found |= {f"root/uart-{baud}.toml": rig("/dev/ttyS2", baud) for baud in (115200, 921600)}
     found["root/b-silent.toml"] = rig(B, answer_s=1, greet_s=1)
     found["root/acceptance.toml"] = (ROOT / "rigs" / "cw-7" / "acceptance.toml").read_text()
     found["root/two.toml"] = two_cases(20_000)
@@ -95,13 +96,13 @@ def files():
 
 
 class Board:
-    """A virtual board, bridged to a line of the machine."""
+    """A virtual board, bridged to the far end of a line of the machine."""
 
-    def __init__(self, machine, line, *options):
+    def __init__(self, far_end, *options):
         self.process = subprocess.Popen([str(VIRTUAL_BOARD), "--parent-dies", "--filter-set", "cw-7", *options],
                                         stdin=subprocess.DEVNULL, stdout=subprocess.PIPE)
         device = self.process.stdout.readline().decode().strip()
-        self.bridge = LineBridge(machine.line_path(line), device)
+        self.bridge = LineBridge(far_end, device)
 
     def stop(self):
         self.bridge.stop()
@@ -128,7 +129,7 @@ def setUpModule():
     said = machine.boot(BOOT_S)
     if len(said) != 1:
         raise AssertionError(f"modules {MODULES}: {said}\n{machine.kernel_said()}")
-    board = Board(machine, 0)
+    board = Board(machine.line_path(0))
     unittest.addModuleCleanup(board.stop)
     machine.plug(0, "CW7-A")
     machine.until("test -c /dev/ttyUSB0")
@@ -227,7 +228,7 @@ class UsbSerial(unittest.TestCase):
         self.assertIn("parity N", told)
 
     def test_of_two_adapters_the_serial_number_chooses_and_without_it_the_name_is_refused(self):
-        defective = Board(machine, 1, "--fault", "A01")
+        defective = Board(machine.line_path(1), "--fault", "A01")
         self.addCleanup(defective.stop)
         machine.plug(1, "CW7-B")
         self.addCleanup(machine.until, "! test -e /dev/ttyUSB1")
@@ -239,6 +240,15 @@ class UsbSerial(unittest.TestCase):
         self.check("acceptance", "a-921600", 0)
         # That it fails shows that it is the other board.
         self.check("acceptance", "b-921600", 1)
+
+    def test_a_port_on_the_main_board_works_and_its_driver_refuses_what_its_clock_cannot_divide(self):
+        other = Board(machine.uart_path())
+        self.addCleanup(other.stop)
+        self.check("two", "uart-115200", 0)
+        sent = other.bridge.to_board_bytes
+        done = self.check("two", "uart-921600", 3)  # the classic UART's clock ends at 115200 baud
+        self.assertIn("baud 921600 is not supported", done.text)
+        self.assertEqual(other.bridge.to_board_bytes, sent)
 
     # --- one program at a time ---
 
