@@ -94,6 +94,7 @@ class Bench(Case):
         self.expect_3(done)
         for case in self.record()["cases"]:
             self.assertEqual((case["verdict"], case["rules"]), ("invalid", []))
+            self.assertIsNone(case["stream"]["bad_frames_at_board"], "a board that was not asked has no counters")
 
     def test_another_build_id_than_the_image(self):
         image = FIRMWARE / "halflsb-cw7.elf"

@@ -62,6 +62,13 @@ exit $status
                                   stdout=full, stderr=subprocess.PIPE, timeout=support.LIMIT_S)
         self.assertEqual(done.returncode, 73, done.stderr)
 
+    def test_closed_standard_output_is_not_a_pass_and_nothing_else_takes_its_place(self):
+        with self.virtual_board():
+            command = f"{support.HALFLSB} check {self.plan(STEP)} --rig {self.rig()} --out {self.folder}/run --log {self.folder}/log >&-"
+            done = subprocess.run(["bash", "-c", command], capture_output=True, text=True, timeout=support.LIMIT_S)
+        self.assertEqual(done.returncode, 73, done.stderr)
+        self.assertNotIn("1 pass", (self.folder / "log").read_text())
+
     def test_a_closed_pipe_ends_quietly(self):
         with self.virtual_board():
             command = f"{support.HALFLSB} check {self.plan(STEP)} --rig {self.rig()} --out {self.folder}/run | true; exit ${{PIPESTATUS[0]}}"

@@ -107,6 +107,18 @@ class Refusals(Case):
         self.assert_status(done, 65)
         self.assertIn("image.elf", done.err)
 
+    def test_a_log_never_replaces_an_input(self):
+        plan, rig = self.plan(NOISE), self.rig(port="/dev/there-is-no-such-port")
+        for precious in (plan, rig):
+            before = precious.read_text()
+            done = self.check(plan, rig, "--log", precious)
+            self.assert_status(done, 64)
+            self.assertIn("would replace", done.err)
+            self.assertEqual(precious.read_text(), before)
+
+    def test_a_seed_out_of_range_is_a_usage_error(self):
+        self.assert_status(self.refused(self.plan(NOISE), "--seed", 2**53), 64)
+
     def test_predict_needs_no_board(self):
         done = halflsb("predict", self.plan(NOISE), "--rig", self.rig(port="/dev/there-is-no-such-port"))
         self.assert_status(done, 0)

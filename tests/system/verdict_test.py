@@ -94,6 +94,20 @@ class Verdicts(Case):
         self.assert_status(done, 0)
         self.assertEqual([case["name"] for case in self.record()["cases"]], ["step"])
 
+    def test_the_rerun_command_repeats_the_case_whatever_its_name(self):
+        for name in ("--help", "it's; $(touch evil) *?"):
+            with self.subTest(name):
+                cases = NOISE.replace('name = "noise"', f'name = "{name}"') + STEP
+                with self.virtual_board("--fault", "A01"):
+                    done = self.check(self.plan(cases), self.rig())
+                    command = next(line for line in done.out.splitlines() if "rerun: " in line).split("rerun: ")[1]
+                    again = support.subprocess.run(["sh", "-c", command.replace("halflsb", str(support.HALFLSB), 1)], cwd=self.folder,
+                                                   capture_output=True, text=True, timeout=support.LIMIT_S)
+                self.assertEqual(again.returncode, 1, again.stdout + again.stderr)
+                self.assertIn("1/1", again.stdout)
+                self.assertFalse((self.folder / "evil").exists())
+                self.cleanup_run()
+
     def design(self, kind, name, bits=None):
         """A [[filter]] with the coefficients that the board's tables were made from."""
         numbers = " ".join((support.ROOT / f"rigs/filters/coefficients/{name}.txt").read_text().split()).replace(" ", ", ")
