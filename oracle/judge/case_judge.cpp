@@ -100,9 +100,10 @@ Outcome<CaseJudgement> CaseJudge::finish(const ResponseReplay& replay) {
             }
             const bool clear = lags.residual_at(measured) * 100.0 <= lags.residual_at(expected_lag_);
             if (clear || (second.has_error_rules() && second.error_rules_pass())) {
-                latency = latency_verdict(*latency_rule_, measured, expected_lag_, Verdict::fail,
-                                          "the response is " + samples_text(measured) + " behind the reference" +
-                                              (std::abs(measured) == lags.window ? ", or more: the window ends there" : ""));
+                latency =
+                    latency_verdict(*latency_rule_, measured, expected_lag_, Verdict::fail,
+                                    "the response is " + samples_text(measured) + " behind the reference" +
+                                        (std::abs(measured) == lags.window ? ", or more: the window ends there" : ""));
                 verdicts = second.verdicts();
                 for (RuleVerdict& verdict : verdicts) {
                     const std::string note = "judged at the measured lag of " + samples_text(measured);
@@ -131,9 +132,11 @@ std::int64_t latency_evidence_samples(const FilterChain& filter) {
     std::uint64_t operations_a_sample = 2 * lag_window_samples + 1;
     for (const FilterStage& stage : filter) {
         if (const auto* fir = std::get_if<Fir>(&stage.design)) operations_a_sample += fir->taps.size();
-        if (const auto* cascade = std::get_if<BiquadCascade>(&stage.design)) operations_a_sample += 5 * cascade->sections.size();
+        if (const auto* cascade = std::get_if<BiquadCascade>(&stage.design))
+            operations_a_sample += 5 * cascade->sections.size();
     }
-    constexpr std::uint64_t operations = std::uint64_t{1} << 30, fewest = std::uint64_t{1} << 14, most = std::uint64_t{1} << 22;
+    constexpr std::uint64_t operations = std::uint64_t{1} << 30, fewest = std::uint64_t{1} << 14,
+                            most = std::uint64_t{1} << 22;
     return static_cast<std::int64_t>(std::clamp(std::bit_floor(operations / operations_a_sample), fewest, most));
 }
 

@@ -10,7 +10,6 @@ constexpr std::size_t incoming_bytes = 16384;
 constexpr std::size_t outgoing_enough_bytes = 4096;
 /// Bytes of SAMPLES and RESPONSE beside their words.
 
-
 std::size_t size_of(int count) { return static_cast<std::size_t>(count); }
 
 }  // namespace
@@ -73,8 +72,12 @@ Duration FramedSession::resend_after() const {
     // and two resends must fit into the patience, or one lost frame at the end of a stream would end it.
     const Duration window = limits_.resend + 3 * round_trip(window_.in_flight());
     const Duration soonest = limits_.resend + 3 * round_trip(1);
-    return std::min(window, std::max(soonest, silence_limit() / 3));
+    const Duration first = std::min(window, std::max(soonest, silence_limit() / 3));
+    constexpr int most_doublings = 2;
+    return std::min(first * (1 << std::min(resends_in_a_row_, most_doublings)), std::max(first, silence_limit() / 3));
 }
+
+Instant FramedSession::quiet_since() const { return std::max(progress_at_, last_good_); }
 
 // ---------------------------------------------------------------------------------------------------------
 // Everything that moves

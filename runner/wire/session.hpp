@@ -76,6 +76,8 @@ private:
     Duration round_trip(std::size_t frames) const;
     Duration silence_limit() const;
     Duration resend_after() const;
+    /// When the board last made progress or said anything at all.
+    Instant quiet_since() const;
 
     Error fail(Error error);
     Error failed_wait(const std::string& awaited, Duration waited);

@@ -161,8 +161,11 @@ Outcome<void> FramedSession::check_patience() {
     if (window_.in_flight() == 0) return {};
     const Instant now = clock_.now();
     if (now - last_good_ >= silence_limit()) return failed_wait("the answer to " + oldest_name(), now - last_good_);
-    if (now - progress_at_ < resend_after()) return {};
-    if (resends_in_a_row_ >= most_resends_in_a_row)
+    // A board that lags still answers what it was sent twice: sending more would only fill its buffer with
+    // what it has done already. So it is the quiet that counts, and each resend doubles it.
+    const bool hopeless = now - progress_at_ >= most_resends_in_a_row * silence_limit();
+    if (!hopeless && now - quiet_since() < resend_after()) return {};
+    if (hopeless || resends_in_a_row_ >= most_resends_in_a_row)
         return fail(Error{ErrorKind::bench, link_.name(),
                           "sent " + oldest_name() + " " + std::to_string(resends_in_a_row_ + 1) +
                               " times without an answer to it; after the last time " + arrivals_.text(),
@@ -191,7 +194,7 @@ Outcome<Received> FramedSession::advance(Instant until) {
     for (bool is_first = true;; is_first = false) {
         const bool awaits = window_.in_flight() > 0;
         const Instant give_up =
-            awaits ? std::min(last_good_ + silence_limit(), progress_at_ + resend_after()) : called_at;
+            awaits ? std::min(last_good_ + silence_limit(), quiet_since() + resend_after()) : called_at;
         const Outcome<std::size_t> moved = step(std::min(until, give_up));
         // Samples that came before an error are good; the error is told by the next call.
         const bool brought = answers_ != answers_before;

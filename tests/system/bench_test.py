@@ -89,6 +89,14 @@ class Bench(Case):
                 self.assertGreater(self.record()["cases"][0]["stream"]["resends"], 0)
                 self.clean()
 
+    def test_a_line_that_stands_still_for_a_while_is_waited_for(self):
+        for fault in ("stall=3000:300", "stall=5000:700"):
+            with self.subTest(fault):
+                with self.virtual_board("--fault", fault):
+                    done = self.check(self.plan(NOISE), self.rig())
+                self.assert_status(done, 0)
+                self.clean()
+
     def test_a_line_too_bad_to_use_is_said_and_never_judged(self):
         done = self.run_with("flip-byte=100")
         self.expect_3(done)

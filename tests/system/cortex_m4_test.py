@@ -1,5 +1,10 @@
 """The firmware of the CW-7, machine code on an emulated Cortex-M4 behind an emulated UART: the right build passes its
 acceptance plan, each defective build is refused by the rule that should see it."""
+import os
+import signal
+import subprocess
+import time
+
 from support import FIRMWARE, NOISE, ROOT, Case, main
 import support
 
@@ -34,6 +39,24 @@ class CortexM4(Case):
                 self.assertLessEqual(rules, self.failed_rules(record))
                 if defect == "late":
                     self.assertEqual(self.failed_rules(record), {"latency"})
+
+    def test_a_starved_emulator_is_slow_and_not_broken(self):
+        """Stopped three quarters of the time, it lags behind its line: no resend may bury it."""
+        with self.emulated_board("halflsb-cw7.elf") as board:
+            emulator = int(subprocess.run(["pgrep", "-P", str(board.process.pid), "qemu"], capture_output=True, text=True, check=True).stdout.split()[0])
+            plan, rig = self.plan(NOISE), self.rig()
+            command = [str(word) for word in (support.HALFLSB, "check", plan, "--rig", rig, "--out", self.folder / "run")]
+            check = subprocess.Popen(command, stdout=subprocess.PIPE, stderr=subprocess.STDOUT, text=True)
+            try:
+                while check.poll() is None:
+                    os.kill(emulator, signal.SIGSTOP)
+                    time.sleep(0.35)
+                    os.kill(emulator, signal.SIGCONT)
+                    time.sleep(0.12)
+            finally:
+                os.kill(emulator, signal.SIGCONT)
+            text = check.communicate(timeout=support.LIMIT_S)[0]
+        self.assertEqual(check.returncode, 0, text)
 
     def rounding_bound_lsb(self, file, bits):
         """Each section rounds once, to within half an LSB; what that makes of the output is at most half the L1 norm of the

@@ -38,8 +38,11 @@ TEST_CASE("admission: a latency rule that a small step cannot answer names noise
 TEST_CASE("admission: a stimulus that is silent for hours does not hold up its plan", "[judge]") {
     const Plan plan = test::moving_average_plan();
     const Rule latency = test::rule(plan, "latency", values({{"latency_samples", std::int64_t{0}}}));
-    const auto late = values({{"level_ratio", 1.0}, {"at_samples", std::int64_t{9'999'999'000}}, {"length_samples", std::int64_t{10'000'000'000}}});
-    const auto found = refused(plan, "step", late, latency);  // a pass over all of it would take the better part of an hour
+    const auto late = values({{"level_ratio", 1.0},
+                              {"at_samples", std::int64_t{9'999'999'000}},
+                              {"length_samples", std::int64_t{10'000'000'000}}});
+    const auto found =
+        refused(plan, "step", late, latency);  // a pass over all of it would take the better part of an hour
     REQUIRE(found.size() == 1);
     CHECK(found[0].problem.ends_with("below 130, in its first 4194304 samples"));
 }
