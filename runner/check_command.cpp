@@ -1,6 +1,5 @@
 #include <variant>
 
-#include "runner/cli/case_selection.hpp"
 #include "runner/cli/exit_status.hpp"
 #include "runner/cli/progress.hpp"
 #include "runner/commands.hpp"
@@ -85,9 +84,7 @@ Outcome<RunRequest> read_request(const Options& options, const Desk& desk, std::
         if (!read) return read.error();
         *text = std::move(*read);
     }
-    std::vector<std::string> names;
-    for (const Case& the_case : request.plan.cases) names.push_back(the_case.name);
-    auto selected = select_cases(names, options.case_patterns);
+    auto selected = selected_cases(request.plan, options);
     if (!selected) return selected.error();
     request.selected = std::move(*selected);
     if (options.image) {
@@ -112,9 +109,7 @@ Outcome<RunRequest> read_request(const Options& options, const Desk& desk, std::
 int check_command(const Options& options, const Desk& desk) {
     std::vector<std::string> problems;
     const auto request = read_request(options, desk, problems);
-    for (const std::string& problem : problems)
-        (void)desk.terminal.write(Stream::err, problem + (problem.ends_with('\n') ? "" : "\n"));
-    if (!problems.empty()) return exit_status_of(Error{ErrorKind::input, "", "", ""});
+    if (!problems.empty()) return tell_problems(problems, desk);
     if (!request) return tell(request.error(), options, desk);
     if (interrupted()) return tell(interrupted_error(options.plan), options, desk);
 

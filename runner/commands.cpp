@@ -1,5 +1,6 @@
 #include "runner/commands.hpp"
 
+#include "runner/cli/case_selection.hpp"
 #include "runner/cli/exit_status.hpp"
 #include "runner/link/ports.hpp"
 #include "runner/report/terminal_report.hpp"
@@ -16,6 +17,18 @@ TextStyle style_of(const Terminal& terminal, Stream stream, ColourWish wish) {
 int tell(const Error& error, const Options& options, const Desk& desk) {
     (void)desk.terminal.write(Stream::err, error_text(error, style_of(desk.terminal, Stream::err, options.colour)));
     return exit_status_of(error);
+}
+
+int tell_problems(const std::vector<std::string>& problems, const Desk& desk) {
+    for (const std::string& problem : problems)
+        (void)desk.terminal.write(Stream::err, problem + (problem.ends_with('\n') ? "" : "\n"));
+    return exit_status_of(Error{ErrorKind::input, "", "", ""});
+}
+
+Outcome<std::vector<std::size_t>> selected_cases(const Plan& plan, const Options& options) {
+    std::vector<std::string> names;
+    for (const Case& the_case : plan.cases) names.push_back(the_case.name);
+    return select_cases(names, options.case_patterns);
 }
 
 Outcome<void> check_log_path(const Options& options, const Files& files) {

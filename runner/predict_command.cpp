@@ -5,8 +5,6 @@
 #include "oracle/arithmetic/declared.hpp"
 #include "oracle/judge/case_judge.hpp"
 #include "oracle/measure/response.hpp"
-#include "runner/cli/case_selection.hpp"
-#include "runner/cli/exit_status.hpp"
 #include "runner/commands.hpp"
 #include "runner/config/plan_file.hpp"
 #include "runner/config/rig_file.hpp"
@@ -115,13 +113,9 @@ int predict_command(const Options& options, const Desk& desk) {
             rig = std::move(std::get<Rig>(read));
         }
     }
-    for (const std::string& problem : problems)
-        (void)desk.terminal.write(Stream::err, problem + (problem.ends_with('\n') ? "" : "\n"));
-    if (!problems.empty()) return exit_status_of(Error{ErrorKind::input, "", "", ""});
+    if (!problems.empty()) return tell_problems(problems, desk);
     const Plan& known = std::get<Plan>(plan);
-    std::vector<std::string> names;
-    for (const Case& the_case : known.cases) names.push_back(the_case.name);
-    const auto selected = select_cases(names, options.case_patterns);
+    const auto selected = selected_cases(known, options);
     if (!selected) return tell(selected.error(), options, desk);
     if (interrupted()) return tell(interrupted_error(options.plan), options, desk);
 
