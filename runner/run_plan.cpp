@@ -6,10 +6,10 @@
 
 #include "runner/capture/recorder.hpp"
 #include "runner/record/run_folder.hpp"
-#include "runner/record/sha256.hpp"
 #include "runner/report/junit_report.hpp"
 #include "runner/run_case.hpp"
 #include "runner/wire/wire_cost.hpp"
+#include "runner/world/sha256.hpp"
 
 namespace halflsb {
 namespace {

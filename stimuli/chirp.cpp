@@ -102,8 +102,8 @@ StimulusOutcome make_chirp(const Recipe& recipe, const ParameterValues& values, 
         return refused("to_hz", number_text(to_hz) + " Hz equals from_hz, so nothing sweeps",
                        "Give another frequency, or use shape = \"sine\".");
     }
-    const Spectrum band{.from_cycles_per_sample = std::min(from_hz, to_hz) / context.rate_hz,
-                        .to_cycles_per_sample = std::max(from_hz, to_hz) / context.rate_hz};
+    const Spectrum band{
+        .bands = {{std::min(from_hz, to_hz) / context.rate_hz, std::max(from_hz, to_hz) / context.rate_hz}}};
     const std::int64_t sweep_samples = placement->own_samples();
     if (values.text(recipe, "sweep") == "logarithmic") {
         const LogarithmicPhase phase(from_hz, to_hz, context.rate_hz, sweep_samples);

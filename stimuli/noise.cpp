@@ -30,7 +30,7 @@ template <class Distribution>
 class Noise final : public PlacedStimulus {
 public:
     Noise(const Placement& placement, std::uint64_t seed) : PlacedStimulus(placement), seed_(seed) {}
-    Spectrum spectrum() const override { return {.from_cycles_per_sample = 0.0, .to_cycles_per_sample = 0.5}; }
+    Spectrum spectrum() const override { return {.bands = {{0.0, 0.5}}}; }
 
 private:
     void fill_own(std::int64_t first_own_index, std::span<double> ratios) const override {

@@ -11,7 +11,7 @@ namespace {
 
 constexpr std::string_view magic = "\x93NUMPY";
 constexpr std::size_t version_bytes = 2;
-constexpr std::array<std::string_view, 4> descriptors = {"<i2", "<i4", "<f4", "<f8"};
+constexpr std::array<std::string_view, 8> descriptors = {"|i1", "|u1", "<u2", "<i2", "<i4", "<i8", "<f4", "<f8"};
 
 Error broken(std::size_t at, std::string problem, std::string remedy = "") {
     return {ErrorKind::input, "byte " + std::to_string(at), std::move(problem), std::move(remedy)};
@@ -38,7 +38,11 @@ public:
         if (!type_) return broken(offset_, "the dictionary has no 'descr'");
         if (!order_seen_) return broken(offset_, "the dictionary has no 'fortran_order'");
         if (!count_) return broken(offset_, "the dictionary has no 'shape'");
-        return NpyHeader{*type_, *count_, 0};
+        if (is_fortran_ && channels_ != 1) {
+            return broken(offset_, "several channels in Fortran order",
+                          "Save the array in C order, (samples, channels).");
+        }
+        return NpyHeader{*type_, *count_, channels_, 0};
     }
 
 private:
@@ -65,14 +69,15 @@ private:
         const auto found = std::find(descriptors.begin(), descriptors.end(), *text);
         if (found == descriptors.end()) {
             return broken(place, "elements of type '" + std::string(*text) + "' are not taken",
-                          "Save as one of <i2, <i4, <f4, <f8.");
+                          "Save as one of |i1, |u1, <u2, <i2, <i4, <i8, <f4, <f8.");
         }
         type_ = static_cast<NpyType>(found - descriptors.begin());
         return {};
     }
 
     Outcome<void> read_order() {
-        if (!word("False") && !word("True")) return expected("True or False");
+        is_fortran_ = word("True");
+        if (!is_fortran_ && !word("False")) return expected("True or False");
         order_seen_ = true;
         return {};
     }
@@ -82,24 +87,27 @@ private:
         const std::size_t place = offset_ + at_;
         if (!take('(')) return expected("'('");
         std::size_t dimensions = 0;
-        std::int64_t count = 0;
+        std::int64_t lengths[2] = {0, 1};
         bool comma = true;
         while (!take(')')) {
             if (!comma) return expected("',' or ')'");
             skip_blanks();
             const char* begin = text_.data() + at_;
-            const auto [end, error] = std::from_chars(begin, text_.data() + text_.size(), count);
-            if (error != std::errc() || count < 0) return expected("a length");
+            std::int64_t length = 0;
+            const auto [end, error] = std::from_chars(begin, text_.data() + text_.size(), length);
+            if (error != std::errc() || length < 0) return expected("a length");
             at_ += static_cast<std::size_t>(end - begin);
+            if (dimensions < 2) lengths[dimensions] = length;
             ++dimensions;
             comma = take(',');
         }
         if (dimensions == 1 && !comma) return expected("',' after the only length");
-        if (dimensions != 1) {
+        if (dimensions != 1 && dimensions != 2) {
             return broken(place, "the array has " + std::to_string(dimensions) + " dimensions",
-                          "Save one channel as a one-dimensional array.");
+                          "Save one channel as a one-dimensional array, several as (samples, channels).");
         }
-        count_ = count;
+        count_ = lengths[0];
+        channels_ = lengths[1];
         return {};
     }
 
@@ -140,13 +148,14 @@ private:
     std::size_t at_ = 0;
     std::optional<NpyType> type_;
     std::optional<std::int64_t> count_;
-    bool order_seen_ = false;
+    std::int64_t channels_ = 1;
+    bool order_seen_ = false, is_fortran_ = false;
 };
 
 }  // namespace
 
 std::size_t bytes_of(NpyType type) {
-    constexpr std::array<std::size_t, 4> sizes = {2, 4, 4, 8};
+    constexpr std::array<std::size_t, 8> sizes = {1, 1, 2, 2, 4, 8, 4, 8};
     return sizes[static_cast<std::size_t>(type)];
 }
 
@@ -154,10 +163,36 @@ std::string_view descriptor_of(NpyType type) { return descriptors[static_cast<st
 
 NpyType npy_type_of(const SampleFormat& format) {
     if (!format.has_lsb()) return NpyType::float32;
-    return format.word_bits == 16 ? NpyType::int16 : NpyType::int32;
+    const bool is_unsigned = format.family == FormatFamily::u;
+    if (format.word_bits <= 8) return is_unsigned ? NpyType::uint8 : NpyType::int8;
+    if (format.word_bits <= 16) return is_unsigned ? NpyType::uint16 : NpyType::int16;
+    return NpyType::int32;
 }
 
-NpyHeaderBytes npy_header(NpyType type, std::int64_t count) {
+void to_npy_bytes(const SampleFormat& format, std::span<const Code> codes, std::span<std::byte> bytes) {
+    const std::size_t size = bytes_of(npy_type_of(format));
+    assert(bytes.size() == codes.size() * size);
+    std::size_t at = 0;
+    for (const Code code : codes) {
+        const auto word = static_cast<std::uint32_t>(code);
+        for (std::size_t k = 0; k < size; ++k) bytes[at++] = static_cast<std::byte>(word >> (8 * k) & 0xffU);
+    }
+}
+
+void from_npy_bytes(const SampleFormat& format, std::span<const std::byte> bytes, std::span<Code> codes) {
+    const std::size_t size = bytes_of(npy_type_of(format));
+    assert(bytes.size() == codes.size() * size);
+    const auto unused_bits = static_cast<int>(32 - 8 * size);
+    const bool is_unsigned = format.family == FormatFamily::u;
+    std::size_t at = 0;
+    for (Code& code : codes) {
+        std::uint32_t word = 0;
+        for (std::size_t k = 0; k < size; ++k) word |= std::to_integer<std::uint32_t>(bytes[at++]) << (8 * k);
+        code = is_unsigned ? static_cast<Code>(word) : static_cast<Code>(word << unused_bits) >> unused_bits;
+    }
+}
+
+NpyHeaderBytes npy_header(NpyType type, std::int64_t count, int channels) {
     assert(count >= 0);
     constexpr std::size_t prefix_bytes = magic.size() + version_bytes + 2;
     constexpr std::size_t dictionary_bytes = npy_header_bytes - prefix_bytes;
@@ -167,7 +202,7 @@ NpyHeaderBytes npy_header(NpyType type, std::int64_t count) {
     text += static_cast<char>(dictionary_bytes >> 8);
     // As NumPy writes it: keys in alphabetical order, a comma behind the last.
     text += "{'descr': '" + std::string(descriptor_of(type)) + "', 'fortran_order': False, 'shape': (" +
-            std::to_string(count) + ",), }";
+            std::to_string(count) + (channels == 1 ? ",), }" : ", " + std::to_string(channels) + "), }");
     text.resize(npy_header_bytes - 1, ' ');
     text += '\n';
     NpyHeaderBytes bytes{};

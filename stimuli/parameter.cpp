@@ -54,6 +54,20 @@ std::vector<std::vector<double>> ParameterValues::rows(std::string_view name) co
     return list == nullptr ? std::vector<std::vector<double>>{} : *list;
 }
 
+std::shared_ptr<const SignalFile> ParameterValues::signal_file(std::string_view name) const {
+    const auto found = values_.find(name);
+    if (found == values_.end()) return nullptr;
+    const auto* file = std::get_if<std::shared_ptr<const SignalFile>>(&found->second);
+    return file == nullptr ? nullptr : *file;
+}
+
+std::vector<StimulusWords> ParameterValues::stimuli(std::string_view name) const {
+    const auto found = values_.find(name);
+    if (found == values_.end()) return {};
+    const auto* list = std::get_if<std::shared_ptr<const std::vector<StimulusWords>>>(&found->second);
+    return list == nullptr || *list == nullptr ? std::vector<StimulusWords>{} : **list;
+}
+
 const Recipe* find_recipe(const std::vector<Recipe>& recipes, std::string_view name) {
     const auto found = std::find_if(recipes.begin(), recipes.end(), [&](const Recipe& r) { return r.name == name; });
     return found == recipes.end() ? nullptr : &*found;

@@ -6,6 +6,7 @@
 #include <cstdint>
 #include <limits>
 #include <map>
+#include <memory>
 #include <optional>
 #include <string>
 #include <string_view>
@@ -15,14 +16,17 @@
 namespace halflsb {
 
 enum class ParameterType {
-    integer,   ///< a whole number
-    real,      ///< a finite number; a whole number is taken too
-    text,      ///< a string
-    choice,    ///< a string out of `choices`
-    reals,     ///< an array of finite numbers, not empty
-    sections,  ///< an array of arrays of finite numbers
-    bands,     ///< an array of tables {from_hz, to_hz, min_db, max_db}; see rule.hpp
-    file,      ///< a path under the plan's root; the reader hands on the file's numbers as `reals`
+    integer,      ///< a whole number
+    real,         ///< a finite number; a whole number is taken too
+    text,         ///< a string
+    choice,       ///< a string out of `choices`
+    reals,        ///< an array of finite numbers, not empty
+    sections,     ///< an array of arrays of finite numbers
+    bands,        ///< an array of tables {from_hz, to_hz, min_db, max_db}; see rule.hpp
+    file,         ///< a path under the plan's root; the reader hands on the file's numbers as `reals`
+    integers,     ///< an array of whole numbers, not empty; handed on as `reals`
+    signal_file,  ///< a path of a CSV or NPY file under the plan's root; handed on as a SignalFile
+    stimuli,      ///< an array of tables, each a stimulus with its shape
 };
 
 inline constexpr double no_limit = std::numeric_limits<double>::infinity();
@@ -47,9 +51,21 @@ struct Recipe {
     std::vector<Parameter> parameters = {};
 };
 
+/// Samples from a file, as the file held them: one column of an NPY, or those of a CSV.
+struct SignalFile {
+    std::string path;                          ///< as the plan wrote it
+    std::vector<std::string> names;            ///< of the columns; "" where the file gives none
+    std::vector<std::vector<double>> columns;  ///< all of one length, none empty
+    bool whole_numbers = false;                ///< an integer NPY, or a CSV without any fraction
+    std::optional<double> rate_hz;             ///< where the file states it
+};
+
+struct StimulusWords;
+
 /// What a plan gave for one parameter.
 using ParameterValue =
-    std::variant<std::int64_t, double, std::string, std::vector<double>, std::vector<std::vector<double>>>;
+    std::variant<std::int64_t, double, std::string, std::vector<double>, std::vector<std::vector<double>>,
+                 std::shared_ptr<const SignalFile>, std::shared_ptr<const std::vector<StimulusWords>>>;
 
 /// What a plan gave for one recipe: types and ranges of the table already hold, defaults are not
 /// yet filled in.
@@ -63,10 +79,18 @@ public:
     std::optional<std::string> text(const Recipe& recipe, std::string_view name) const;
     std::vector<double> numbers(std::string_view name) const;
     std::vector<std::vector<double>> rows(std::string_view name) const;
+    std::shared_ptr<const SignalFile> signal_file(std::string_view name) const;
+    std::vector<StimulusWords> stimuli(std::string_view name) const;
     const std::map<std::string, ParameterValue, std::less<>>& all() const { return values_; }
 
 private:
     std::map<std::string, ParameterValue, std::less<>> values_;
+};
+
+/// A stimulus inside another one.
+struct StimulusWords {
+    std::string shape;
+    ParameterValues values;
 };
 
 /// The recipe of that name, or nullptr.

@@ -33,11 +33,56 @@ std::optional<SampleFormat> sample_format(std::string_view name) {
     return std::nullopt;
 }
 
-std::optional<SampleFormat> sample_format_of_wire_number(std::uint8_t number) {
+std::size_t SampleFormat::word_bytes() const {
+    const auto bytes = static_cast<std::size_t>(word_bits + 7) / 8;
+    return bytes == 3 && justification != Justification::packed ? 4 : bytes;
+}
+
+std::string text_of(const SampleFormat& format) {
+    std::string text(format.name);
+    if (format.justification == Justification::left) text += ", left-justified";
+    if (format.justification == Justification::packed) text += ", packed";
+    if (format.byte_order == ByteOrder::big) text += ", big-endian";
+    return text;
+}
+
+Outcome<SampleFormat> with_layout(SampleFormat format, Justification justification, ByteOrder byte_order) {
+    format.justification = justification;
+    format.byte_order = byte_order;
+    const int container_bits = 8 * static_cast<int>(format.word_bytes());
+    const auto refuse = [&](std::string problem, std::string remedy) {
+        return Error{ErrorKind::input, "justification", std::move(problem), std::move(remedy)};
+    };
+    if (justification == Justification::left && container_bits == format.word_bits) {
+        return refuse("there is no left in " + std::string(format.name) + ": it fills its " +
+                          std::to_string(format.word_bytes()) + " bytes",
+                      "leave it out; only u12 and i24 have spare bits");
+    }
+    if (justification == Justification::packed && format.word_bytes() != 3) {
+        return refuse(std::string(format.name) + " cannot be packed", "leave it out; only i24 has a byte to save");
+    }
+    return format;
+}
+
+std::uint8_t wire_code_of(const SampleFormat& format) {
+    return static_cast<std::uint8_t>(format.wire_number | static_cast<unsigned>(format.justification) << 5 |
+                                     static_cast<unsigned>(format.byte_order) << 7);
+}
+
+std::optional<SampleFormat> sample_format_of_wire_code(std::uint8_t code) {
+    const unsigned justification = code >> 5 & 3U;
+    if (justification > 2U) return std::nullopt;
     for (const SampleFormat& format : sample_formats()) {
-        if (format.wire_number == number) return format;
+        if (format.wire_number != (code & 0x1fU)) continue;
+        auto laid_out =
+            with_layout(format, static_cast<Justification>(justification), static_cast<ByteOrder>(code >> 7));
+        if (laid_out) return *laid_out;
     }
     return std::nullopt;
+}
+
+Code zero_code(const SampleFormat& format) {
+    return format.family == FormatFamily::u ? Code{1} << (format.word_bits - 1) : 0;
 }
 
 double lsb_value(const SampleFormat& format) {

@@ -4,6 +4,7 @@
 
 #include <cstdint>
 #include <memory>
+#include <optional>
 #include <span>
 #include <string>
 #include <vector>
@@ -17,9 +18,11 @@ namespace halflsb {
 
 /// Where a stimulus has power; a response rule asks before anything is streamed.
 struct Spectrum {
-    /// Continuous power between two frequencies, cycles per sample; both 0 when there is none.
-    double from_cycles_per_sample = 0.0;
-    double to_cycles_per_sample = 0.0;
+    struct Band {
+        double from_cycles_per_sample = 0.0, to_cycles_per_sample = 0.0;
+    };
+    /// Where power is continuous, ascending and apart.
+    std::vector<Band> bands = {};
     /// Single lines, cycles per sample, ascending.
     std::vector<double> tones = {};
 };
@@ -37,8 +40,11 @@ public:
 
 /// What the shapes need to know of the signal.
 struct StimulusContext {
-    double rate_hz = 1.0;  ///< frequencies are given in Hz; Nyquist is rate_hz / 2
-    SampleFormat input;    ///< level_codes are codes of this format
+    double rate_hz = 1.0;                        ///< frequencies are given in Hz; Nyquist is rate_hz / 2
+    SampleFormat input;                          ///< level_codes are codes of this format
+    std::optional<double> full_scale_unit = {};  ///< what full scale of the input means; levels in the unit need it
+    /// Of a stimulus inside another that gives no length of its own.
+    std::optional<std::int64_t> default_length_samples = {};
 };
 
 /// Every shape with its parameters; the only place their words stand.

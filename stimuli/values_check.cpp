@@ -32,7 +32,12 @@ std::string_view type_text(ParameterType type) {
             return "a string";
         case ParameterType::reals:
         case ParameterType::file:
+        case ParameterType::integers:
             return "an array of numbers";
+        case ParameterType::signal_file:
+            return "the samples of a file";
+        case ParameterType::stimuli:
+            return "an array of stimuli";
         case ParameterType::sections:
         case ParameterType::bands:
             return "an array of arrays of numbers";
@@ -49,8 +54,13 @@ bool type_fits(ParameterType type, const ParameterValue& value) {
         case ParameterType::text:
         case ParameterType::choice:
             return std::holds_alternative<std::string>(value);
+        case ParameterType::signal_file:
+            return std::holds_alternative<std::shared_ptr<const SignalFile>>(value);
+        case ParameterType::stimuli:
+            return std::holds_alternative<std::shared_ptr<const std::vector<StimulusWords>>>(value);
         case ParameterType::reals:
         case ParameterType::file:
+        case ParameterType::integers:
             return std::holds_alternative<std::vector<double>>(value);
         case ParameterType::sections:
         case ParameterType::bands:
@@ -99,6 +109,7 @@ std::optional<Error> value_misfit(const Parameter& parameter, const ParameterVal
         }
         return std::nullopt;
     }
+    if (!std::holds_alternative<std::string>(value)) return std::nullopt;
     const auto& text = *std::get_if<std::string>(&value);
     const auto& choices = parameter.choices;
     if (parameter.type == ParameterType::choice && std::find(choices.begin(), choices.end(), text) == choices.end()) {

@@ -268,7 +268,7 @@ const std::vector<Recipe>& filter_recipes() {
     return recipes;
 }
 
-Outcome<FilterStage> make_stage(std::string_view kind, const ParameterValues& values) {
+Outcome<FilterStage> make_stage(std::string_view kind, const ParameterValues& values, const StageContext&) {
     if (kind == "moving-average") return make_moving_average(values);
     if (kind == "fir") return make_fir(values);
     if (kind == "biquad-cascade") return make_cascade(values);

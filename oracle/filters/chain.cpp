@@ -3,6 +3,7 @@
 #include <algorithm>
 
 #include "oracle/filters/biquad.hpp"
+#include "oracle/filters/comb.hpp"
 #include "oracle/filters/fir.hpp"
 #include "oracle/filters/moving_average.hpp"
 
@@ -20,6 +21,7 @@ std::unique_ptr<Filter> make_stage_filter(const Fir& design) { return std::make_
 std::unique_ptr<Filter> make_stage_filter(const BiquadCascade& design) {
     return std::make_unique<BiquadFilter>(design);
 }
+std::unique_ptr<Filter> make_stage_filter(const Comb& design) { return std::make_unique<CombFilter>(design); }
 
 }  // namespace
 
@@ -43,6 +45,15 @@ void ChainFilter::process(std::span<const double> in, std::span<double> out) {
             from = to;
         }
     }
+}
+
+FilterChain chain_of_channel(const FilterChain& chain, int channel) {
+    FilterChain own;
+    for (const FilterStage& stage : chain) {
+        const auto& list = stage.channels;
+        if (list.empty() || std::find(list.begin(), list.end(), channel) != list.end()) own.push_back(stage);
+    }
+    return own;
 }
 
 std::unique_ptr<Filter> make_filter(const FilterChain& chain) {

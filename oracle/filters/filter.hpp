@@ -11,6 +11,7 @@
 #include <variant>
 #include <vector>
 
+#include "oracle/filters/stage_arithmetic.hpp"
 #include "stimuli/outcome.hpp"
 #include "stimuli/parameter.hpp"
 
@@ -36,7 +37,13 @@ struct BiquadCascade {
     std::vector<BiquadSection> sections;
 };
 
-using FilterDesign = std::variant<MovingAverage, Fir, BiquadCascade>;
+/// y[n] = direct x[n] + forward x[n-delay_samples] - feedback y[n-delay_samples], zeros before the start.
+struct Comb {
+    int delay_samples = 1;
+    double direct = 1.0, forward = 0.0, feedback = 0.0;
+};
+
+using FilterDesign = std::variant<MovingAverage, Fir, BiquadCascade, Comb>;
 
 /// One [[filter]] of a plan.
 struct FilterStage {
@@ -44,6 +51,9 @@ struct FilterStage {
     /// The firmware stores each coefficient as a multiple of 2^-coefficient_fraction_bits, rounded
     /// half away from zero. A moving average has no coefficients and takes none.
     std::optional<int> coefficient_fraction_bits;
+    StageArithmetic arithmetic = {};
+    std::string kind = {};           ///< as the plan calls it: "one-pole" is a BiquadCascade of one section
+    std::vector<int> channels = {};  ///< counted from 1; empty: every channel passes this stage
 };
 
 /// Stages in the order in which the signal passes them.
@@ -62,8 +72,19 @@ public:
 /// Every filter kind with its parameters; the only place their words stand.
 const std::vector<Recipe>& filter_recipes();
 
-/// An Error's place is the name of the parameter to blame (an unstable section is an error).
-Outcome<FilterStage> make_stage(std::string_view kind, const ParameterValues& values);
+/// What a stage needs to know beside its own words.
+struct StageContext {
+    double rate_hz = 1.0;             ///< corners are given in Hz
+    StageArithmetic arithmetic = {};  ///< that of the stage
+    int channels = 1;                 ///< of the signal
+};
+
+/// An Error's place is the name of the parameter to blame (an unstable section is an error). Where the filter's
+/// own words do not give coefficient_fraction_bits, those of the arithmetic hold.
+Outcome<FilterStage> make_stage(std::string_view kind, const ParameterValues& values, const StageContext& context = {});
+
+/// The stages that a channel passes, counted from 1.
+FilterChain chain_of_channel(const FilterChain& chain, int channel);
 
 std::unique_ptr<Filter> make_filter(const FilterChain& chain);
 
@@ -75,6 +96,9 @@ std::vector<double> impulse_response(const FilterChain& chain, std::size_t lengt
 /// Some 24 time constants of the slowest pole are run, at most 2^24 samples; what would come after
 /// those (poles within 2e-6 of the unit circle) is added as the rest of a geometric series.
 double l1_norm(const FilterChain& chain, double tail = 1e-12);
+/// How many zeros it takes until nothing is left of what went before: the smallest N with
+/// sum over n >= N of |h[n]| times `full_scale` below `half_step`. nullopt: none up to 2^24 (docs/methods.md).
+std::optional<std::int64_t> flush_samples(const FilterChain& chain, double full_scale, double half_step);
 /// The largest pole radius of the chain; 0 for FIR and moving average.
 double largest_pole_radius(const FilterChain& chain);
 

@@ -61,6 +61,19 @@ std::vector<double> impulse_response(const FilterChain& chain, std::size_t lengt
     return response;
 }
 
+std::optional<std::int64_t> flush_samples(const FilterChain& chain, double full_scale, double half_step) {
+    // The whole sum first, then what is left of it after each sample.
+    const double whole = l1_norm(chain, 1e-12);
+    ImpulseAnswer answer(chain);
+    constexpr std::int64_t most_samples = std::int64_t{1} << 24;
+    double gone = 0.0;
+    for (std::int64_t samples = 0; samples <= most_samples; ++samples) {
+        if ((whole - gone) * full_scale < half_step) return samples;
+        gone += answer.absolute_sum(1);
+    }
+    return std::nullopt;
+}
+
 double l1_norm(const FilterChain& chain, double tail) {
     // Beyond this many samples the rest is the sum of a geometric series, from the last stretch.
     constexpr std::int64_t most_samples = std::int64_t{1} << 24;

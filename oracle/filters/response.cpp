@@ -85,6 +85,11 @@ std::complex<double> response_of(const BiquadCascade& design, double f) {
     return product;
 }
 
+std::complex<double> response_of(const Comb& design, double f) {
+    const auto turn = unit_at_half_turns(product_modulo_2(-2.0 * f, design.delay_samples));
+    return (design.direct + design.forward * turn) / (1.0 + design.feedback * turn);
+}
+
 }  // namespace
 
 std::complex<double> response_at(const FilterChain& chain, double cycles_per_sample) {

@@ -51,7 +51,7 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
     const Stimulus& stimulus = *the_case.stimulus;
     const Spectrum spectrum = stimulus.spectrum();
     const std::string noise = "use noise or a chirp over that band";
-    if (spectrum.tones.empty() && spectrum.to_cycles_per_sample <= 0.0) {
+    if (spectrum.tones.empty() && spectrum.bands.empty()) {
         refusals.push_back(
             {rule.position,
              "case \"" + the_case.name + "\" cannot answer a response rule, which is not for a " + the_case.shape,

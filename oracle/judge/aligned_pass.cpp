@@ -160,6 +160,8 @@ std::vector<RuleVerdict> AlignedPass::verdicts() const {
             for (const ErrorRuleState& state : error_rules_) {
                 if (state.rule == &rule) verdicts.push_back(error_verdict(state));
             }
+        } else if (std::holds_alternative<UnchangedRule>(rule.kind)) {
+            verdicts.push_back({rule, Verdict::undecided, "accepted", {}, "not judged", std::nullopt});
         }
     }
     return verdicts;

@@ -22,8 +22,9 @@ bool within(double hz, const ResponseBand& band) {
 }
 
 bool has_power(const Spectrum& spectrum, double cycles_per_sample) {
-    return spectrum.to_cycles_per_sample > 0.0 && cycles_per_sample >= spectrum.from_cycles_per_sample &&
-           cycles_per_sample <= spectrum.to_cycles_per_sample;
+    return std::any_of(spectrum.bands.begin(), spectrum.bands.end(), [&](const Spectrum::Band& band) {
+        return cycles_per_sample >= band.from_cycles_per_sample && cycles_per_sample <= band.to_cycles_per_sample;
+    });
 }
 
 struct Extreme {

@@ -78,6 +78,15 @@ Outcome<Rule> make_latency_rule(const ParameterValues& values, const Recipe& rec
     return Rule{rule, {}};
 }
 
+Outcome<Rule> make_unchanged_rule(const ParameterValues& values, const Recipe& recipe, const RuleContext& context) {
+    UnchangedRule rule;
+    rule.baseline = values.text(recipe, "baseline").value_or("baseline");
+    auto largest = read_limit(values, recipe, largest_words, context);
+    if (!largest) return largest.error();
+    rule.largest = *largest;
+    return Rule{rule, {}};
+}
+
 Outcome<Rule> make_response_rule(const ParameterValues& values, const Recipe& recipe, const RuleContext& context) {
     ResponseRule rule;
     rule.relative_to_design = values.text(recipe, "relative_to") == "design";
@@ -180,6 +189,20 @@ const std::vector<Recipe>& rule_recipes() {
               {"absolute", "design"},
               "Whether the limits hold for the gain itself or for its deviation from the design."},
          }},
+        {"unchanged",
+         "The response equals that of an accepted run (halflsb accept); needs no oracle.",
+         {
+             {"baseline",
+              ParameterType::text,
+              "characters",
+              -no_limit,
+              200,
+              false,
+              std::nullopt,
+              {},
+              "Folder of the baseline, below the root; \"baseline\" when left out."},
+             limit("max_lsb", "LSB", "Largest difference allowed; none when left out: bit for bit."),
+         }},
     };
     return recipes;
 }
@@ -189,9 +212,11 @@ std::string_view kind_name(const Rule& rule) { return rule_recipes()[rule.kind.i
 Outcome<Rule> make_rule(std::string_view kind, const ParameterValues& values, const RuleContext& context) {
     const Recipe* recipe = find_recipe(rule_recipes(), kind);
     if (recipe == nullptr)
-        return refuse("kind", "there is no rule \"" + std::string(kind) + "\"", "use error, latency or response");
+        return refuse("kind", "there is no rule \"" + std::string(kind) + "\"",
+                      "use error, latency, response or unchanged");
     if (kind == "error") return make_error_rule(values, *recipe, context);
     if (kind == "latency") return make_latency_rule(values, *recipe);
+    if (kind == "unchanged") return make_unchanged_rule(values, *recipe, context);
     return make_response_rule(values, *recipe, context);
 }
 

@@ -2,12 +2,14 @@
 // rule_recipes() and nowhere else.
 #pragma once
 
+#include <memory>
 #include <optional>
 #include <string>
 #include <string_view>
 #include <variant>
 #include <vector>
 
+#include "oracle/judge/accepted_response.hpp"
 #include "stimuli/outcome.hpp"
 #include "stimuli/parameter.hpp"
 
@@ -54,8 +56,16 @@ struct ResponseRule {
     bool relative_to_design = false;  ///< the bands limit the gain itself, or its deviation from the design
 };
 
+/// The response equals that of an accepted run, bit for bit or within a limit; needs no oracle.
+struct UnchangedRule {
+    std::string baseline;                              ///< folder below the root
+    std::optional<Limit> largest;                      ///< none: bit for bit
+    std::shared_ptr<const AcceptedResponse> accepted;  ///< of the case; nullptr: the baseline has none
+    std::string missing;                               ///< then: why, and what to do
+};
+
 struct Rule {
-    std::variant<ErrorRule, LatencyRule, ResponseRule> kind;
+    std::variant<ErrorRule, LatencyRule, ResponseRule, UnchangedRule> kind;
     PlanPosition position;
 };
 

@@ -47,11 +47,12 @@ struct Neighbourhood {
 struct RuleVerdict {
     Rule rule;
     Verdict verdict = Verdict::undecided;
-    std::string reference;  ///< "declared", "design"
+    std::string reference;  ///< "declared", "design", "accepted"
     std::vector<JudgedFigure> figures;
     std::string
         reason;  ///< of an undecided one; or what the reader should know ("judged at the measured lag of 1 sample")
     std::optional<Neighbourhood> first_bad;
+    int channel = 0;  ///< of the response, counted from 1; 0: the signal has only one
 };
 
 /// fail > undecided > pass over the rules.

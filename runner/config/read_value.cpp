@@ -44,7 +44,12 @@ std::string wanted_text(ParameterType type) {
         case ParameterType::bands:
             return "an array of tables";
         case ParameterType::file:
+        case ParameterType::signal_file:
             return "the name of a file";
+        case ParameterType::integers:
+            return "an array of whole numbers";
+        case ParameterType::stimuli:
+            return "an array of tables";
     }
     return {};
 }
@@ -69,6 +74,12 @@ std::string example(const Parameter& parameter) {
             return start + "[{ from_hz = 0.0, to_hz = 50.0, min_db = -1.0, max_db = 1.0 }, ...]";
         case ParameterType::file:
             return start + "\"taps.txt\", a path under the root";
+        case ParameterType::signal_file:
+            return start + "\"recorded.npy\", a path under the root";
+        case ParameterType::integers:
+            return start + "[1, 2]";
+        case ParameterType::stimuli:
+            return start + "[{ shape = \"step\", length_samples = 100 }, ...]";
     }
     return {};
 }
@@ -255,6 +266,10 @@ std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlE
                 return std::nullopt;
             }
             return as_value(read_bands(value, context));
+        case ParameterType::integers:
+        case ParameterType::signal_file:
+        case ParameterType::stimuli:
+            break;  // no recipe has one yet
     }
     return std::nullopt;
 }

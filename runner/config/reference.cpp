@@ -16,7 +16,6 @@ namespace halflsb {
 
 namespace {
 
-
 std::string type_text(const Parameter& parameter) {
     switch (parameter.type) {
         case ParameterType::integer:
@@ -40,6 +39,12 @@ std::string type_text(const Parameter& parameter) {
             return "list of bands";
         case ParameterType::file:
             return "file of numbers, under the root";
+        case ParameterType::signal_file:
+            return "CSV or NPY file, under the root";
+        case ParameterType::integers:
+            return "list of whole numbers";
+        case ParameterType::stimuli:
+            return "list of stimuli";
     }
     return {};
 }

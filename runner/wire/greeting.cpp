@@ -111,7 +111,7 @@ Outcome<void> GreetingReader::add_board(message::BytesView rest) {
 }
 
 Outcome<SampleFormat> GreetingReader::format(std::uint8_t number, const std::string& where) const {
-    const std::optional<SampleFormat> known = sample_format_of_wire_number(number);
+    const std::optional<SampleFormat> known = sample_format_of_wire_code(number);
     if (known) return *known;
     return refused(where + " format " + std::to_string(number) + " is unknown; known are " + known_formats());
 }

@@ -115,6 +115,7 @@ Outcome<void> FramedSession::start(std::size_t filter_number) {
     outgoing_.clear();
     outgoing_done_ = 0;
     filter_ = greeting_->filters[filter_number];
+    filter_number_ = filter_number;
     const int asked = std::clamp(limits_.block_samples, 1, greeting_->max_block_samples);
     block_samples_ = asked;
     // Never smaller than for the stream before, whose last answers are still signs of life.

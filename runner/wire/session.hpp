@@ -25,6 +25,8 @@ public:
     std::size_t room_samples() const override;
     void send(std::span<const Code> samples) override;
     void send_reset() override;
+    bool is_streaming(std::size_t filter_number) const override;
+    void send_setting(std::size_t setting_number, std::int32_t value) override;
     Outcome<Received> advance(Instant until) override;
     Outcome<BoardCounters> counters() override;
     WireFigures figures() const override;
@@ -109,6 +111,7 @@ private:
 
     // The stream.
     BoardFilter filter_;
+    std::size_t filter_number_ = 0;
     int block_samples_ = 0;
     StreamWindow window_;
     std::int64_t sent_samples_ = 0, received_samples_ = 0;

@@ -54,6 +54,26 @@ void FramedSession::send(std::span<const Code> samples) {
     queue(frame, body_);
 }
 
+bool FramedSession::is_streaming(std::size_t filter_number) const {
+    return !error_ && window_.is_open() && filter_number_ == filter_number;
+}
+
+void FramedSession::send_setting(std::size_t setting_number, std::int32_t value) {
+    if (room_samples() == 0 || !greeting_ || setting_number >= greeting_->settings.size()) {
+        fail(Error{ErrorKind::defect, link_.name(), "a setting was sent without credit, or is none of the board", ""});
+        return;
+    }
+    body_.clear();
+    message::encode(message::Set{window_.next_seq(), static_cast<std::uint64_t>(sent_samples_),
+                                 static_cast<std::uint8_t>(setting_number), value},
+                    body_);
+    StreamWindow::Frame& frame = window_.push();
+    frame.type = message::Type::set;
+    frame.at = sent_samples_;
+    frame.samples = 0;
+    queue(frame, body_);
+}
+
 void FramedSession::send_reset() {
     if (room_samples() == 0) {
         fail(Error{ErrorKind::defect, link_.name(), "a reset was sent without credit", ""});

@@ -78,6 +78,8 @@ public:
     virtual Outcome<Greeting> greet() = 0;
     /// Opens a stream on that filter of the greeting, from reset, sample index 0.
     virtual Outcome<void> start(std::size_t filter_number) = 0;
+    /// A stream on that filter is open and whole, so that a case can go on where the one before ended.
+    virtual bool is_streaming(std::size_t filter_number) const = 0;
     /// How many samples send() takes now: 0 without credit, else at most a block. A sample is one instant:
     /// with several channels it has a code for each, adjacent.
     virtual std::size_t room_samples() const = 0;
@@ -85,6 +87,9 @@ public:
     virtual void send(std::span<const Code> samples) = 0;
     /// Resets the filter before the next sample sent. Needs room_samples() > 0.
     virtual void send_reset() = 0;
+    /// Changes a setting of the greeting before the next sample sent; a value outside its range is an Error of the
+    /// next advance(). Needs room_samples() > 0.
+    virtual void send_setting(std::size_t setting_number, std::int32_t value) = 0;
     /// Moves bytes until samples arrived (all that are there, in order), or until `until` passes, or
     /// until credit came back. Every wait has a deadline: Error kind bench when the board is silent,
     /// refuses, or was restarted; the problem says what was awaited, how long, and what came instead.

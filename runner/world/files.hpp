@@ -7,6 +7,7 @@
 #pragma once
 
 #include <cstddef>
+#include <cstdint>
 #include <memory>
 #include <span>
 #include <string>
@@ -31,6 +32,15 @@ public:
     virtual void discard() = 0;
 };
 
+/// A file that is read in pieces, so that its size costs no memory.
+class InputFile {
+public:
+    virtual ~InputFile() = default;
+    virtual std::int64_t size_bytes() const = 0;
+    /// From byte `offset` on; all of it must be there.
+    virtual Outcome<void> read(std::int64_t offset, std::span<std::byte> bytes) = 0;
+};
+
 /// Errors of reading are of kind input, errors of writing of kind output; the place is the path.
 class Files {
 public:
@@ -42,6 +52,8 @@ public:
     /// under `root` still after every symbolic link of both was followed.
     virtual Outcome<std::string> read_under_root(const std::string& root, const std::string& relative_path,
                                                  std::size_t cap_bytes) const = 0;
+    /// A regular file of any size, to be read in pieces.
+    virtual Outcome<std::unique_ptr<InputFile>> open_input(const std::string& path) const = 0;
     /// Whether there is anything of that name, a folder or a dangling link included.
     virtual bool exists(const std::string& path) const = 0;
     /// The path with every symbolic link followed and made absolute; "" when there is no such thing.
@@ -63,6 +75,7 @@ public:
     Outcome<std::string> read(const std::string& path, std::size_t cap_bytes) const override;
     Outcome<std::string> read_under_root(const std::string& root, const std::string& relative_path,
                                          std::size_t cap_bytes) const override;
+    Outcome<std::unique_ptr<InputFile>> open_input(const std::string& path) const override;
     bool exists(const std::string& path) const override;
     std::string resolved(const std::string& path) const override;
     Outcome<void> write(const std::string& path, std::span<const std::byte> bytes) override;

@@ -1,6 +1,7 @@
 // The reading half of DiskFiles: regular files only, capped, and confined when the path comes from a plan.
 #include <fcntl.h>
 #include <sys/stat.h>
+#include <unistd.h>
 
 #include <array>
 #include <cerrno>
@@ -165,6 +166,40 @@ Outcome<std::string> DiskFiles::read_under_root(const std::string& root, const s
     auto file = open_without_links(place, real_root, std::string_view(real_path).substr(prefix.size()), cap_bytes);
     if (!file) return file.error();
     return read_all(place, *file, cap_bytes);
+}
+
+class DiskInputFile final : public InputFile {
+public:
+    DiskInputFile(std::string path, FileDescriptor file, std::int64_t size)
+        : path_(std::move(path)), file_(std::move(file)), size_(size) {}
+    std::int64_t size_bytes() const override { return size_; }
+    Outcome<void> read(std::int64_t offset, std::span<std::byte> bytes) override {
+        while (!bytes.empty()) {
+            const ssize_t got = pread(file_.number(), bytes.data(), bytes.size(), offset);
+            if (got < 0 && errno == EINTR) continue;
+            if (got < 0) return reading_error(path_, errno);
+            if (got == 0) return refused(path_, "it became shorter while it was read", "keep other programs away");
+            bytes = bytes.subspan(static_cast<std::size_t>(got));
+            offset += got;
+        }
+        return {};
+    }
+
+private:
+    std::string path_;
+    FileDescriptor file_;
+    std::int64_t size_;
+};
+
+Outcome<std::unique_ptr<InputFile>> DiskFiles::open_input(const std::string& path) const {
+    struct stat facts {};
+    if (stat(path.c_str(), &facts) != 0) return reading_error(path, errno);
+    if (auto regular = check_regular(path, facts, SIZE_MAX); !regular) return regular.error();
+    FileDescriptor file(open(path.c_str(), reading_flags));
+    if (!file.is_open()) return reading_error(path, errno);
+    if (fstat(file.number(), &facts) != 0) return reading_error(path, errno);
+    if (auto regular = check_regular(path, facts, SIZE_MAX); !regular) return regular.error();
+    return std::unique_ptr<InputFile>(std::make_unique<DiskInputFile>(path, std::move(file), facts.st_size));
 }
 
 bool DiskFiles::exists(const std::string& path) const {

@@ -22,6 +22,7 @@ struct BoardFacts {
     std::string filter;
     std::string injection;  ///< "call", "buffer" or "converter"
     int block_samples = 0, credit_blocks = 0;
+    int channels = 1;
     std::uint32_t tick_hz = 0;
 };
 
@@ -47,6 +48,24 @@ struct StreamFacts {
     std::uint32_t ticks_largest = 0;  ///< of one sample
 };
 
+/// What was sent, so that a later judge knows whether a plan still means it.
+struct StimulusFacts {
+    std::string shape;
+    ParameterValues values;    ///< as the plan gave them: the recipe
+    std::int64_t samples = 0;  ///< instants
+    std::string sha256;        ///< of the codes of all channels as NPY data; "" when not all were sent
+    std::string file;          ///< below the run's folder, where the stimulus is explicit; else ""
+};
+
+/// An attempt at a case that did not give a whole capture, and after which the rig allowed another.
+struct AttemptResult {
+    Error invalid;
+    StreamFacts stream;
+    std::string started_utc;
+    double elapsed_s = 0.0;
+    std::string capture_file, capture_sha256;  ///< as in CaseResult
+};
+
 struct CaseResult {
     std::size_t number = 0;  ///< from 1, place in the plan
     std::string name;
@@ -60,7 +79,12 @@ struct CaseResult {
     double elapsed_s = 0.0;
     std::string capture_file;  ///< below the run's folder; "" when nothing was captured
     std::string capture_sha256;
-    std::string rerun;  ///< the command that repeats this case alone
+    StimulusFacts stimulus;
+    Start start = Start::reset;
+    std::int64_t start_samples = 0;  ///< as in Case
+    std::vector<CaseSetting> settings;
+    std::vector<AttemptResult> attempts;  ///< the invalid ones before this
+    std::string rerun;                    ///< the command that repeats this case alone
 };
 
 struct Counts {

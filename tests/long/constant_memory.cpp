@@ -52,7 +52,9 @@ Plan a_plan() {
     plan.title = "constant memory";
     plan.signal.rate_hz = 1200.0;
     plan.signal.input = plan.signal.output = *sample_format("q15");
-    plan.filter.push_back({MovingAverage{static_cast<int>(points)}, std::nullopt});
+    FilterStage stage;
+    stage.design = MovingAverage{static_cast<int>(points)};
+    plan.filter.push_back(stage);
     return plan;
 }
 

@@ -118,13 +118,17 @@ TEST_CASE("npy: other files, versions and lengths are refused", "[stimuli]") {
 
 TEST_CASE("npy: types and shapes that are not ours are refused", "[stimuli]") {
     CHECK(parsed("{'descr': '>i2', 'fortran_order': False, 'shape': (7,), }\n") ==
-          "byte 20: elements of type '>i2' are not taken\n  Save as one of <i2, <i4, <f4, <f8.");
+          "byte 20: elements of type '>i2' are not taken\n  Save as one of |i1, |u1, <u2, <i2, <i4, <i8, <f4, <f8.");
     CHECK(parsed("{'descr': [('a', '<i2')], 'fortran_order': False, 'shape': (7,), }\n") ==
           "byte 20: elements are records\n  Save each column as an array of its own.");
     CHECK(parsed("{'descr': '<i2', 'fortran_order': True, 'shape': (7, 2), }\n") ==
-          "byte 59: the array has 2 dimensions\n  Save one channel as a one-dimensional array.");
+          "byte 10: several channels in Fortran order\n  Save the array in C order, (samples, channels).");
+    CHECK(parsed("{'descr': '<i2', 'fortran_order': False, 'shape': (7, 2, 1), }\n") ==
+          "byte 60: the array has 3 dimensions\n  Save one channel as a one-dimensional array, several as (samples, "
+          "channels).");
     CHECK(parsed("{'descr': '<i2', 'fortran_order': False, 'shape': (), }\n") ==
-          "byte 60: the array has 0 dimensions\n  Save one channel as a one-dimensional array.");
+          "byte 60: the array has 0 dimensions\n  Save one channel as a one-dimensional array, several as (samples, "
+          "channels).");
 }
 
 TEST_CASE("npy: a damaged dictionary is refused where it is damaged", "[stimuli]") {

@@ -22,11 +22,11 @@ TEST_CASE("sample format: the table has the five formats with the numbers of doc
     for (std::size_t i = 0; i < names.size(); ++i) {
         CHECK(sample_formats()[i].name == names[i]);
         CHECK(sample_format(names[i])->wire_number == i + 1);
-        CHECK(sample_format_of_wire_number(static_cast<std::uint8_t>(i + 1))->name == names[i]);
+        CHECK(sample_format_of_wire_code(static_cast<std::uint8_t>(i + 1))->name == names[i]);
     }
     CHECK_FALSE(sample_format("q7"));
-    CHECK_FALSE(sample_format_of_wire_number(0));
-    CHECK_FALSE(sample_format_of_wire_number(6));
+    CHECK_FALSE(sample_format_of_wire_code(0));
+    CHECK_FALSE(sample_format_of_wire_code(6));
     CHECK(format_named("i16").word_bytes() == 2);
     CHECK(format_named("f32").word_bytes() == 4);
 }

@@ -49,6 +49,11 @@ public:
         }
         return read(root + "/" + relative_path, cap_bytes);
     }
+    Outcome<std::unique_ptr<InputFile>> open_input(const std::string& path) const override {
+        auto bytes = read(path, SIZE_MAX);
+        if (!bytes) return bytes.error();
+        return std::unique_ptr<InputFile>(std::make_unique<FakeInputFile>(path, std::move(*bytes)));
+    }
     bool exists(const std::string& path) const override { return contents.count(path) + folders.count(path) > 0; }
     std::string resolved(const std::string& path) const override { return exists(path) ? path : std::string(); }
 
@@ -70,6 +75,23 @@ public:
     }
 
 private:
+    class FakeInputFile final : public InputFile {
+    public:
+        FakeInputFile(std::string path, std::string bytes) : path_(std::move(path)), bytes_(std::move(bytes)) {}
+        std::int64_t size_bytes() const override { return static_cast<std::int64_t>(bytes_.size()); }
+        Outcome<void> read(std::int64_t offset, std::span<std::byte> bytes) override {
+            const auto from = static_cast<std::size_t>(offset);
+            if (from + bytes.size() > bytes_.size())
+                return Error{ErrorKind::input, path_, "it became shorter while it was read", ""};
+            const auto part = std::as_bytes(std::span(bytes_)).subspan(from, bytes.size());
+            std::copy(part.begin(), part.end(), bytes.begin());
+            return {};
+        }
+
+    private:
+        std::string path_, bytes_;
+    };
+
     class FakeOutputFile final : public OutputFile {
     public:
         FakeOutputFile(FakeFiles& files, std::string path) : files_(files), path_(std::move(path)) {}

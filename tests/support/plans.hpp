@@ -24,7 +24,9 @@ inline Plan moving_average_plan(int points = 16) {
     plan.signal.rate_hz = 1200.0;
     plan.signal.input = *sample_format("q15");
     plan.signal.output = *sample_format("q15");
-    plan.filter.push_back({MovingAverage{points}, std::nullopt});
+    FilterStage stage;
+    stage.design = MovingAverage{points};
+    plan.filter.push_back(stage);
     return plan;
 }
 

@@ -46,6 +46,9 @@ public:
                                          std::size_t cap) const override {
         return disk_.read_under_root(root, path, cap);
     }
+    Outcome<std::unique_ptr<InputFile>> open_input(const std::string& path) const override {
+        return disk_.open_input(path);
+    }
     bool exists(const std::string& path) const override { return disk_.exists(path); }
     std::string resolved(const std::string& path) const override { return disk_.resolved(path); }
     Outcome<void> write(const std::string& path, std::span<const std::byte> bytes) override {

@@ -1,4 +1,4 @@
-#include "runner/record/sha256.hpp"
+#include "runner/world/sha256.hpp"
 
 #include <unistd.h>
 

@@ -1,0 +1,39 @@
+// What the firmware promises of one stage's arithmetic: the words of [arithmetic] and [filter.arithmetic].
+//
+// The declared reference (oracle/arithmetic/declared.hpp) uses coefficient_fraction_bits, output_overflow and
+// stage_format; all of them are part of the record.
+#pragma once
+
+#include <optional>
+#include <string_view>
+#include <vector>
+
+#include "stimuli/outcome.hpp"
+#include "stimuli/parameter.hpp"
+#include "stimuli/rounding.hpp"
+#include "stimuli/sample_format.hpp"
+
+namespace halflsb {
+
+enum class Overflow { saturate, wrap };
+std::string_view name_of(Overflow overflow);
+
+struct StageArithmetic {
+    /// Each coefficient is stored as a multiple of 2^-this, rounded half away from zero.
+    std::optional<int> coefficient_fraction_bits = {};
+    std::optional<int> accumulator_bits = {};  ///< 8 .. 64
+    std::optional<Rounding> rounding = {};     ///< of the stage's result to its output words
+    Overflow output_overflow = Overflow::saturate;
+    /// Words between this stage and the next, where the stage overflows; none: wide enough for anything. Of the
+    /// last stage it is the signal's output format.
+    std::optional<SampleFormat> stage_format = {};
+};
+
+/// The words, for the reader, its messages and the reference in docs.
+const Recipe& arithmetic_recipe();
+
+/// `values` over `defaults`: what the stage's own table says, and [arithmetic] for the rest. An Error's place is
+/// the parameter to blame.
+Outcome<StageArithmetic> make_arithmetic(const ParameterValues& values, const StageArithmetic& defaults = {});
+
+}  // namespace halflsb
