@@ -56,7 +56,7 @@ std::optional<ReadStimulus> read_stimulus(ReadContext& context, const TomlValue&
 
 }  // namespace
 
-ReadRules read_rules(ReadContext& context, TableReader& outer, const Signal* signal, const std::string& file) {
+ReadRules read_rules(ReadContext& context, TableReader& outer, const Signal* signal) {
     const std::size_t before = context.problems.count();
     ReadRules read;
     const TomlValue* first_latency = nullptr;
@@ -69,17 +69,17 @@ ReadRules read_rules(ReadContext& context, TableReader& outer, const Signal* sig
         reader.refuse_unknown_keys();
         if (recipe->name == "latency") {
             if (first_latency != nullptr) {
-                reader.refuse(
-                    table->place,
-                    "a second latency rule, beside the one in line " + std::to_string(first_latency->place.line),
-                    "a response has one latency; keep one of the two");
+                reader.refuse(table->place,
+                              "a second latency rule, beside the one in " +
+                                  context.problems.line_text(first_latency->place, table->place),
+                              "a response has one latency; keep one of the two");
             }
             first_latency = table;
         }
         if (!reader.is_clean() || signal == nullptr) continue;
         auto rule = make_rule(recipe->name, values, context_of(*signal));
         if (rule) {
-            rule->position = {file, table->place.line, table->place.column};
+            rule->position = context.position_of(table->place);
             read.rules.push_back(std::move(*rule));
         } else {
             reader.refuse(rule.error());
@@ -90,7 +90,7 @@ ReadRules read_rules(ReadContext& context, TableReader& outer, const Signal* sig
 }
 
 ReadCase read_case(ReadContext& context, const TomlValue& table, const TableReader& top, const Signal* signal,
-                   const std::string& file, std::optional<std::uint64_t> seed) {
+                   std::optional<std::uint64_t> seed) {
     ReadCase read;
     read.place = table.place;
     TableReader reader(context, table, "[[case]]", &top);
@@ -101,7 +101,7 @@ ReadCase read_case(ReadContext& context, const TomlValue& table, const TableRead
     const TomlValue* stimulus_table = reader.table("stimulus", true);
     std::optional<ReadStimulus> stimulus;
     if (stimulus_table != nullptr) stimulus = read_stimulus(context, *stimulus_table, reader, signal, seed);
-    ReadRules rules = read_rules(context, reader, signal, file);
+    ReadRules rules = read_rules(context, reader, signal);
     if (stimulus_table != nullptr) refuse_stimulus_after_rule(reader, *stimulus_table, rules);
     reader.refuse_unknown_keys();
 
@@ -110,7 +110,7 @@ ReadCase read_case(ReadContext& context, const TomlValue& table, const TableRead
         read.the_case.name = *values.text(recipe, "name");
         read.name_place = reader.place_of("name");
     }
-    read.the_case.position = {file, table.place.line, table.place.column};
+    read.the_case.position = context.position_of(table.place);
     read.is_clean = reader.is_clean() && stimulus && rules.is_clean;
     if (!read.is_clean) return read;
     read.the_case.shape = stimulus->shape;

@@ -21,7 +21,7 @@ struct ReadRules {
     std::optional<Place> first;  ///< where the first one stands
     bool is_clean = true;
 };
-ReadRules read_rules(ReadContext& context, TableReader& outer, const Signal* signal, const std::string& file);
+ReadRules read_rules(ReadContext& context, TableReader& outer, const Signal* signal);
 
 struct ReadCase {
     Case the_case;
@@ -31,6 +31,6 @@ struct ReadCase {
     bool is_clean = false;   ///< then it has a stimulus; its rules are its own only
 };
 ReadCase read_case(ReadContext& context, const TomlValue& table, const TableReader& top, const Signal* signal,
-                   const std::string& file, std::optional<std::uint64_t> seed);
+                   std::optional<std::uint64_t> seed);
 
 }  // namespace halflsb

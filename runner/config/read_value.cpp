@@ -218,14 +218,14 @@ std::optional<std::vector<double>> file_numbers_of(const Parameter& parameter, c
                                                    ReadContext& context) {
     const auto path = text_of(parameter, value, context);
     if (!path) return std::nullopt;
-    auto bytes = context.files.read_under_root(context.root, *path, largest_named_file_bytes);
+    auto bytes = context.read_named_file(*path, largest_named_file_bytes);
     if (!bytes) {
         const std::string what =
             std::string(parameter.name) + " = " + quoted(*path) + ": " + printable(bytes.error().problem);
         context.problems.add(value.place, what, printable(bytes.error().remedy));
         return std::nullopt;
     }
-    const SourceText source(context.root + "/" + *path, std::move(*bytes));
+    const SourceText source(context.root + "/" + *path, std::string(*bytes));
     auto numbers = read_number_file(source, parameter);
     if (const auto* text = std::get_if<std::string>(&numbers)) {
         context.problems.add_rendered(value.place, *text);
