@@ -1,6 +1,7 @@
 // [[rule]] and [[case]] of a plan.
 #include <algorithm>
 
+#include "runner/config/plan_each.hpp"
 #include "runner/config/plan_reader.hpp"
 #include "runner/config/plan_words.hpp"
 
@@ -98,6 +99,7 @@ ReadCase read_case(ReadContext& context, const TomlValue& table, const TableRead
     const ParameterValues values = reader.parameters(recipe);
     // Known before its inner tables are read, so that a key of the case under their headers is told from
     // an unknown one.
+    reader.entry(each_word);
     const TomlValue* stimulus_table = reader.table("stimulus", true);
     std::optional<ReadStimulus> stimulus;
     if (stimulus_table != nullptr) stimulus = read_stimulus(context, *stimulus_table, reader, signal, seed);
