@@ -199,7 +199,7 @@ TEST_CASE("each: no list, no value, no name, no key of a case", "[config]") {
         problems_with("") ==
         "plan.toml:17:1: [case.each] varies nothing\n    [case.each]\n    ^\n  give it a key with a list of values\n");
     CHECK(problems_with("size = [{ start = \"reset\" }]\n") ==
-          "plan.toml:18:9: this value of size has no name\n    size = [{ start = \"reset\" }]\n                          ^\n"
+          "plan.toml:18:9: this value of size has no name\n    size = [{ start = \"reset\" }]\n            ^\n"
           "  a table of values has a name that stands for it in the names of the cases: write { name = \"slow\", "
           "rate_hz = "
           "600.0 } for example\n");
