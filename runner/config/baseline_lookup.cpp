@@ -61,7 +61,7 @@ const BaselineFiles::Folder& BaselineFiles::folder_at(const std::string& path, P
     Folder& folder = at->second;
     if (!is_new) return folder;
     const std::string file = shown_folder(path) + std::string(toml_name);
-    auto bytes = context_.files.read_under_root(context_.root, file, largest_named_file_bytes);
+    auto bytes = context_.read_named_file(file, largest_named_file_bytes);
     if (!bytes) {
         // A path that leads out of the root is refused whether there is something or not.
         const bool is_inside = !path.starts_with('/') && ("/" + path + "/").find("/../") == std::string::npos;
@@ -73,7 +73,7 @@ const BaselineFiles::Folder& BaselineFiles::folder_at(const std::string& path, P
         }
         return folder;
     }
-    auto read = read_baseline(SourceText(context_.root + "/" + file, std::move(*bytes)), context_.files);
+    auto read = read_baseline(SourceText(context_.root + "/" + file, std::string(*bytes)), context_.files);
     if (auto* baseline = std::get_if<Baseline>(&read)) {
         folder.baseline = std::move(*baseline);
     } else {
@@ -109,7 +109,7 @@ std::optional<std::vector<Code>> BaselineFiles::kept_codes(const UnchangedRule& 
                               printable(remedy));
         return std::nullopt;
     };
-    const auto bytes = context_.files.read_under_root(context_.root, path, largest_named_file_bytes);
+    const auto bytes = context_.read_named_file(path, largest_named_file_bytes);
     if (!bytes) return refuse(bytes.error().problem, damaged_remedy);
     const auto data = std::as_bytes(std::span(*bytes));
     const auto header = parse_npy_header(data);

@@ -51,7 +51,7 @@ std::vector<std::string> read_labels(TableReader& reader) {
     return labels;
 }
 
-std::vector<CaseSetting> read_settings(TableReader& reader, const std::string& file) {
+std::vector<CaseSetting> read_settings(ReadContext& context, TableReader& reader) {
     std::vector<CaseSetting> settings;
     const TomlValue* table = reader.table(settings_word, false);
     if (table == nullptr) return settings;
@@ -71,9 +71,8 @@ std::vector<CaseSetting> read_settings(TableReader& reader, const std::string& f
                           name + " = " + std::to_string(entry.value.integer) + " does not fit the 32 bits of a setting",
                           "give a number from " + std::to_string(lowest) + " to " + std::to_string(highest));
         } else {
-            settings.push_back({entry.key,
-                                static_cast<std::int32_t>(entry.value.integer),
-                                {file, entry.value.place.line, entry.value.place.column}});
+            settings.push_back(
+                {entry.key, static_cast<std::int32_t>(entry.value.integer), context.position_of(entry.value.place)});
         }
     }
     return settings;
@@ -155,11 +154,10 @@ void read_filter_at(TableReader& reader, const PlanFacts& facts, double rate_hz,
 
 class CaseReader {
 public:
-    CaseReader(ReadContext& context, const TomlValue& table, const TableReader& top, const PlanFacts& facts,
-               const std::string& file)
-        : context_(context), facts_(facts), file_(file), reader_(context, table, "[[case]]", &top) {
+    CaseReader(ReadContext& context, const TomlValue& table, const TableReader& top, const PlanFacts& facts)
+        : context_(context), facts_(facts), reader_(context, table, "[[case]]", &top) {
         read_.place = table.place;
-        read_.the_case.position = {file, table.place.line, table.place.column};
+        read_.the_case.position = context.position_of(table.place);
     }
 
     ReadCase read(std::optional<std::uint64_t> seed) {
@@ -172,7 +170,7 @@ public:
         // Known before its inner tables are read, so that a key of the case under their headers is told from
         // an unknown one.
         const TomlValue* stimulus_table = reader_.table("stimulus", true);
-        the_case.settings = read_settings(reader_, file_);
+        the_case.settings = read_settings(context_, reader_);
 
         const double rate_hz = the_case.rate_hz.value_or(facts_.signal == nullptr ? 1.0 : facts_.signal->rate_hz);
         const auto nyquist_hz = context_.nyquist_hz;
@@ -180,7 +178,7 @@ public:
         std::optional<ReadStimulus> stimulus;
         if (stimulus_table != nullptr)
             stimulus = read_stimulus(context_, *stimulus_table, reader_, facts_.signal, rate_hz, seed);
-        ReadRules rules = read_rules(context_, reader_, facts_, file_, the_case.rate_hz);
+        ReadRules rules = read_rules(context_, reader_, facts_, the_case.rate_hz);
         context_.nyquist_hz = nyquist_hz;
 
         if (stimulus_table != nullptr) refuse_stimulus_after_rule(reader_, *stimulus_table, rules);
@@ -207,7 +205,6 @@ private:
 
     ReadContext& context_;
     const PlanFacts& facts_;
-    const std::string& file_;
     TableReader reader_;
     ReadCase read_;
 };
@@ -215,8 +212,8 @@ private:
 }  // namespace
 
 ReadCase read_case(ReadContext& context, const TomlValue& table, const TableReader& top, const PlanFacts& facts,
-                   const std::string& file, std::optional<std::uint64_t> seed) {
-    return CaseReader(context, table, top, facts, file).read(seed);
+                   std::optional<std::uint64_t> seed) {
+    return CaseReader(context, table, top, facts).read(seed);
 }
 
 }  // namespace halflsb

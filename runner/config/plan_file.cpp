@@ -27,7 +27,9 @@ void add_common_rules(Case& the_case, const std::vector<Rule>& common, bool filt
     if (std::none_of(the_case.rules.begin(), the_case.rules.end(), kind_is(latency))) the_case.rules.push_back(latency);
 }
 
-Place place_of(const PlanPosition& position) { return {position.line, position.column}; }
+Place place_of(const PlanPosition& position, const Problems& problems) {
+    return problems.place_in(position.file, position.line, position.column);
+}
 
 /// A latency rule for every case is asked of the cases that can tell it and left to them by the others,
 /// as the implicit one is; when none can, it is refused.
@@ -39,14 +41,14 @@ void settle_common_latency(Plan& plan, const std::vector<Rule>& common, Problems
     for (Case& the_case : plan.cases) {
         for (Rule& rule : the_case.rules) {
             auto* latency = std::get_if<LatencyRule>(&rule.kind);
-            if (latency == nullptr || place_of(rule.position) != place_of(written->position)) continue;
+            if (latency == nullptr || rule.position != written->position) continue;
             is_asked = true;
             latency->implicit = !latency_evidence(plan, the_case).can_tell;
             is_told = is_told || !latency->implicit;
         }
     }
     if (is_asked && !is_told) {
-        problems.add(place_of(written->position), "no case of this plan can tell its latency",
+        problems.add(place_of(written->position, problems), "no case of this plan can tell its latency",
                      "add a case with noise (shape = \"noise\", level_ratio = 0.5, length_samples = 4096), or leave "
                      "the rule out");
     }
@@ -59,7 +61,7 @@ public:
           path_(path),
           options_(options),
           problems_(document.source),
-          context_{problems_, files, options.root.empty() ? folder_of(path) : options.root, std::nullopt} {}
+          context_{problems_, files, options.root.empty() ? folder_of(path) : options.root, std::nullopt, {}} {}
 
     std::variant<Plan, ReadProblems> read() {
         TableReader top(context_, tree_, "");
@@ -71,7 +73,7 @@ public:
         if (signal) context_.nyquist_hz = signal->rate_hz / 2.0;
         const auto filters = read_filters(context_, top, signal ? &*signal : nullptr);
         const PlanFacts facts{signal ? &*signal : nullptr, filters ? &*filters : nullptr};
-        const ReadRules common = read_rules(context_, top, facts, path_);
+        const ReadRules common = read_rules(context_, top, facts);
         std::vector<ReadCase> cases = read_cases(top, facts);
         check_presence(top, common, cases);
         top.refuse_unknown_keys();
@@ -85,16 +87,16 @@ public:
 private:
     std::vector<ReadCase> read_cases(TableReader& top, const PlanFacts& facts) {
         std::vector<ReadCase> cases;
-        std::map<std::string, int> lines;
+        std::map<std::string, Place> places;
         for (const TomlValue* table : top.tables("case")) {
-            cases.push_back(read_case(context_, *table, top, facts, path_, options_.seed));
+            cases.push_back(read_case(context_, *table, top, facts, options_.seed));
             const ReadCase& read = cases.back();
             if (!read.name_place) continue;
-            const auto [first, is_new] = lines.emplace(read.the_case.name, read.name_place->line);
+            const auto [first, is_new] = places.emplace(read.the_case.name, *read.name_place);
             if (is_new) continue;
             problems_.add(*read.name_place,
-                          "two cases are called " + quoted(read.the_case.name) + ", the other one in line " +
-                              std::to_string(first->second),
+                          "two cases are called " + quoted(read.the_case.name) + ", the other one in " +
+                              problems_.line_text(first->second, *read.name_place),
                           "give each case a name of its own; --case chooses by it");
         }
         return cases;
@@ -132,7 +134,7 @@ private:
         settle_common_latency(plan_, common, problems_);
         for (const Case& the_case : plan_.cases) {
             for (const Refusal& refusal : refusals(plan_, the_case)) {
-                problems_.add(place_of(refusal.position), refusal.problem, refusal.remedy);
+                problems_.add(place_of(refusal.position, problems_), refusal.problem, refusal.remedy);
             }
         }
     }

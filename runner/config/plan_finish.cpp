@@ -9,7 +9,9 @@ namespace halflsb {
 
 namespace {
 
-Place place_of(const PlanPosition& position) { return {position.line, position.column}; }
+Place place_of(const PlanPosition& position, const Problems& problems) {
+    return problems.place_in(position.file, position.line, position.column);
+}
 
 /// The bands of a rule for every case were held to the rate of the signal, not to that of the case.
 void check_bands(const Case& the_case, Problems& problems) {
@@ -20,7 +22,7 @@ void check_bands(const Case& the_case, Problems& problems) {
         if (response == nullptr) continue;
         for (const ResponseBand& band : response->bands) {
             if (band.to_hz <= nyquist_hz) continue;
-            problems.add(place_of(rule.position),
+            problems.add(place_of(rule.position, problems),
                          "the band " + number_text(band.from_hz) + " to " + number_text(band.to_hz) +
                              " Hz ends above Nyquist of case " + quoted(the_case.name) + ", " +
                              number_text(nyquist_hz) + " Hz",
@@ -32,7 +34,7 @@ void check_bands(const Case& the_case, Problems& problems) {
 
 void check_rules(const Plan& plan, const Case& the_case, Problems& problems) {
     if (!plan.filter_is_unknown || !the_case.rules.empty()) return;
-    problems.add(place_of(the_case.position), "no rule looks at case " + quoted(the_case.name),
+    problems.add(place_of(the_case.position, problems), "no rule looks at case " + quoted(the_case.name),
                  "of an unknown filter nothing is judged without asking: add a rule of kind \"unchanged\"");
 }
 
@@ -47,7 +49,7 @@ void finish_cases(ReadContext& context, Plan& plan) {
     for (Case& the_case : plan.cases) {
         for (Rule& rule : the_case.rules) {
             if (auto* unchanged = std::get_if<UnchangedRule>(&rule.kind))
-                baselines.take(plan, the_case, place_of(rule.position), *unchanged);
+                baselines.take(plan, the_case, place_of(rule.position, context.problems), *unchanged);
         }
     }
 }

@@ -27,7 +27,7 @@ struct ReadRules {
     std::optional<Place> first;  ///< where the first one stands
     bool is_clean = true;
 };
-ReadRules read_rules(ReadContext& context, TableReader& outer, const PlanFacts& facts, const std::string& file,
+ReadRules read_rules(ReadContext& context, TableReader& outer, const PlanFacts& facts,
                      std::optional<double> rate_hz = std::nullopt);
 
 /// [case.stimulus], or nullopt after a report.
@@ -48,7 +48,7 @@ struct ReadCase {
     bool is_clean = false;   ///< then it has a stimulus; its rules are its own only
 };
 ReadCase read_case(ReadContext& context, const TomlValue& table, const TableReader& top, const PlanFacts& facts,
-                   const std::string& file, std::optional<std::uint64_t> seed);
+                   std::optional<std::uint64_t> seed);
 
 /// What can be said only once the rules for every case are with the cases: bands above the Nyquist of a case's own
 /// rate, a case of an unknown filter that no rule looks at; and the baselines of the rules `unchanged` are read.

@@ -30,8 +30,7 @@ void refuse_without_reference(TableReader& reader, std::string_view kind) {
 
 }  // namespace
 
-ReadRules read_rules(ReadContext& context, TableReader& outer, const PlanFacts& facts, const std::string& file,
-                     std::optional<double> rate_hz) {
+ReadRules read_rules(ReadContext& context, TableReader& outer, const PlanFacts& facts, std::optional<double> rate_hz) {
     const std::size_t before = context.problems.count();
     ReadRules read;
     const TomlValue* first_latency = nullptr;
@@ -46,17 +45,17 @@ ReadRules read_rules(ReadContext& context, TableReader& outer, const PlanFacts& 
             refuse_without_reference(reader, recipe->name);
         if (recipe->name == "latency") {
             if (first_latency != nullptr) {
-                reader.refuse(
-                    table->place,
-                    "a second latency rule, beside the one in line " + std::to_string(first_latency->place.line),
-                    "a response has one latency; keep one of the two");
+                reader.refuse(table->place,
+                              "a second latency rule, beside the one in " +
+                                  context.problems.line_text(first_latency->place, table->place),
+                              "a response has one latency; keep one of the two");
             }
             first_latency = table;
         }
         if (!reader.is_clean() || facts.signal == nullptr) continue;
         auto rule = make_rule(recipe->name, values, context_of(*facts.signal, rate_hz.value_or(facts.signal->rate_hz)));
         if (rule) {
-            rule->position = {file, table->place.line, table->place.column};
+            rule->position = context.position_of(table->place);
             read.rules.push_back(std::move(*rule));
         } else {
             reader.refuse(rule.error());

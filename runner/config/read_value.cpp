@@ -220,10 +220,10 @@ std::optional<std::vector<std::vector<double>>> sections_of(const Parameter& par
 }
 
 /// The bytes of a file that the plan names.
-std::optional<std::string> named_bytes(const Parameter& parameter, const TomlValue& value, const std::string& path,
-                                       ReadContext& context) {
-    auto bytes = context.files.read_under_root(context.root, path, largest_named_file_bytes);
-    if (bytes) return std::move(*bytes);
+std::optional<std::string_view> named_bytes(const Parameter& parameter, const TomlValue& value, const std::string& path,
+                                            ReadContext& context) {
+    auto bytes = context.read_named_file(path, largest_named_file_bytes);
+    if (bytes) return *bytes;
     const std::string what =
         std::string(parameter.name) + " = " + quoted(path) + ": " + printable(bytes.error().problem);
     context.problems.add(value.place, what, printable(bytes.error().remedy));
@@ -236,7 +236,7 @@ std::optional<std::vector<double>> file_numbers_of(const Parameter& parameter, c
     if (!path) return std::nullopt;
     auto bytes = named_bytes(parameter, value, *path, context);
     if (!bytes) return std::nullopt;
-    const SourceText source(context.root + "/" + *path, std::move(*bytes));
+    const SourceText source(context.root + "/" + *path, std::string(*bytes));
     auto numbers = read_number_file(source, parameter);
     if (const auto* text = std::get_if<std::string>(&numbers)) {
         context.problems.add_rendered(value.place, *text);
@@ -255,7 +255,7 @@ std::optional<std::shared_ptr<const SignalFile>> signal_file_of(const Parameter&
     if (known != nullptr) return known;
     auto bytes = named_bytes(parameter, value, *path, context);
     if (!bytes) return std::nullopt;
-    auto read = read_signal_file({*path, context.root + "/" + *path, rate_hz}, std::move(*bytes));
+    auto read = read_signal_file({*path, context.root + "/" + *path, rate_hz}, std::string(*bytes));
     if (const auto* text = std::get_if<std::string>(&read)) {
         context.problems.add_rendered(value.place, *text);
         return std::nullopt;

@@ -7,6 +7,17 @@
 
 namespace halflsb {
 
+Outcome<std::string_view> ReadContext::read_named_file(const std::string& path, std::size_t cap_bytes) {
+    const auto known =
+        std::find_if(parts.begin(), parts.end(), [&](const PlanPart& part) { return part.path == path; });
+    // One that was taken with a higher cap is asked for again, to be refused as any other.
+    if (known != parts.end() && known->bytes.size() <= cap_bytes) return std::string_view(known->bytes);
+    auto bytes = files.read_under_root(root, path, cap_bytes);
+    if (!bytes) return bytes.error();
+    parts.push_back({path, std::move(*bytes)});
+    return std::string_view(parts.back().bytes);
+}
+
 TableReader::TableReader(ReadContext& context, const TomlValue& table, std::string title, const TableReader* outer)
     : context_(context),
       table_(table),

@@ -3,6 +3,7 @@
 // Problems with their places, and reading goes on.
 #pragma once
 
+#include <deque>
 #include <map>
 #include <memory>
 #include <optional>
@@ -10,6 +11,7 @@
 #include <string_view>
 #include <vector>
 
+#include "oracle/judge/plan.hpp"
 #include "runner/config/problems.hpp"
 #include "runner/config/toml_tree.hpp"
 #include "runner/world/files.hpp"
@@ -23,8 +25,15 @@ struct ReadContext {
     const Files& files;
     std::string root;                  ///< of files that the text names
     std::optional<double> nyquist_hz;  ///< for bands and stimulus files, once the sample rate is known
+    std::deque<PlanPart> parts = {};   ///< what read_named_file gave so far
     /// Stimulus files already read, by path and rate: many cases may name one.
     std::map<std::string, std::shared_ptr<const SignalFile>> signal_files = {};
+
+    /// The bytes of a file that the text names, by its path under the root. Each is read once and kept for the
+    /// record of the run; the view holds as long as this context. Errors are those of Files::read_under_root.
+    Outcome<std::string_view> read_named_file(const std::string& path, std::size_t cap_bytes);
+    /// What outlives the reading: the file's name, line and column.
+    PlanPosition position_of(Place place) const { return {problems.file_of(place), place.line, place.column}; }
 };
 
 class TableReader {

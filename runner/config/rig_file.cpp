@@ -175,7 +175,7 @@ std::variant<Rig, ReadProblems> read_rig(const std::string& path, const Files& f
     Rig rig;
     rig.file = path;
     rig.folder = folder_of(path);
-    ReadContext context{problems, files, rig.folder, std::nullopt};
+    ReadContext context{problems, files, rig.folder, std::nullopt, {}};
     TableReader top(context, document.tree, "");
     for (const std::string_view key : {"board", "link", "wire", "run", "commands"}) top.entry(key);
     read_board(context, top, rig);
