@@ -20,12 +20,13 @@ namespace {
 
 /// A case's own rule takes the place of those for every case of the same kind; the latency of 0 that
 /// every case has without asking comes last.
-void add_common_rules(Case& the_case, const std::vector<Rule>& common) {
+void add_common_rules(Case& the_case, const std::vector<Rule>& common, bool filter_is_unknown) {
     const std::vector<Rule> own = the_case.rules;
     const auto kind_is = [](const Rule& a) { return [&a](const Rule& b) { return a.kind.index() == b.kind.index(); }; };
     for (const Rule& rule : common) {
         if (std::none_of(own.begin(), own.end(), kind_is(rule))) the_case.rules.push_back(rule);
     }
+    if (filter_is_unknown) return;
     const Rule latency{LatencyRule{0, true}, the_case.position};
     if (std::none_of(the_case.rules.begin(), the_case.rules.end(), kind_is(latency))) the_case.rules.push_back(latency);
 }
@@ -82,18 +83,18 @@ public:
         const ParameterValues values = top.parameters(plan_recipe());
         // All words of the top are known before the tables below are read: the trap of a top-level key
         // under a header is told by them.
-        for (const std::string_view key : {"signal", "filter", "rule", "case"}) top.entry(key);
+        for (const std::string_view key : {"signal", "arithmetic", "filter", "rule", "case"}) top.entry(key);
         top.entry(include_word);
         const auto signal = read_signal(context_, top);
         if (signal) context_.nyquist_hz = signal->rate_hz / 2.0;
-        auto chain = read_filters(context_, top);
-        const Signal* known_signal = signal ? &*signal : nullptr;
-        const ReadRules common = read_rules(context_, top, known_signal);
-        std::vector<ReadCase> cases = read_cases(top, known_signal);
+        const auto filters = read_filters(context_, top, signal ? &*signal : nullptr);
+        const PlanFacts facts{signal ? &*signal : nullptr, filters ? &*filters : nullptr};
+        const ReadRules common = read_rules(context_, top, facts);
+        std::vector<ReadCase> cases = read_cases(top, facts);
         check_presence(top, common);
         top.refuse_unknown_keys();
 
-        if (signal && chain && common.is_clean) admit(*signal, *chain, common.rules, cases);
+        if (signal && filters && common.is_clean) admit(facts, common.rules, cases);
         if (problems_.count() > 0) return problems_.sorted();
         plan_.title = *values.text(plan_recipe(), "title");
         plan_.parts.push_back({"", std::move(document_.bytes)});
@@ -102,7 +103,7 @@ public:
     }
 
 private:
-    std::vector<ReadCase> read_cases(TableReader& top, const Signal* signal) {
+    std::vector<ReadCase> read_cases(TableReader& top, const PlanFacts& facts) {
         std::vector<CaseExpansion> expansions;
         for (const TomlValue* table : top.tables("case")) expansions.emplace_back(*table, problems_);
         std::vector<ReadCase> cases;
@@ -114,7 +115,7 @@ private:
             for (std::size_t i = 0; i < count; ++i) {
                 const auto table = expansion.at(i, problems_);
                 if (!table) continue;
-                cases.push_back(read_case(context_, *table, top, signal, options_.seed));
+                cases.push_back(read_case(context_, *table, top, facts, options_.seed));
                 check_name(cases.back(), names);
             }
         }
@@ -147,16 +148,19 @@ private:
     }
 
     /// Joins what was read, and asks the judge which rules the stimuli cannot answer.
-    void admit(const Signal& signal, FilterChain& chain, const std::vector<Rule>& common,
-               std::vector<ReadCase>& cases) {
+    void admit(const PlanFacts& facts, const std::vector<Rule>& common, std::vector<ReadCase>& cases) {
         plan_.file = shown_name_;
-        plan_.signal = signal;
-        plan_.filter = std::move(chain);
+        plan_.signal = *facts.signal;
+        plan_.filter = facts.filters->chain;
+        plan_.filter_is_unknown = facts.filters->is_unknown;
         for (ReadCase& read : cases) {
             if (!read.is_clean) continue;
-            add_common_rules(read.the_case, common);
+            add_common_rules(read.the_case, common, plan_.filter_is_unknown);
             plan_.cases.push_back(std::move(read.the_case));
         }
+        const std::size_t before = problems_.count();
+        finish_cases(context_, plan_);
+        if (problems_.count() != before) return;
         settle_common_latency(plan_, common, problems_);
         for (const Case& the_case : plan_.cases) {
             for (const Refusal& refusal : refusals(plan_, the_case)) {
