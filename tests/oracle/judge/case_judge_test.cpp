@@ -5,39 +5,18 @@
 #include <limits>
 
 #include "oracle/judge/units.hpp"
+#include "tests/oracle/judge/judging.hpp"
 #include "tests/support/plans.hpp"
 
 using namespace halflsb;
+using test::delayed;
+using test::judge;
 using test::values;
 
 namespace {
 
 const ParameterValues noise =
     values({{"level_ratio", 0.9}, {"length_samples", std::int64_t{3000}}, {"seed", std::int64_t{5}}});
-
-CaseJudgement judge(const Plan& plan, const Case& the_case, const std::vector<Code>& response,
-                    std::size_t block = 256) {
-    CaseJudge judge(plan, the_case);
-    for (std::size_t first = 0; first < response.size(); first += block) {
-        judge.add(std::span(response).subspan(first, std::min(block, response.size() - first)));
-    }
-    auto judgement = judge.finish([&](std::int64_t first, std::span<Code> codes) -> Outcome<void> {
-        std::copy_n(response.begin() + first, codes.size(), codes.begin());
-        return {};
-    });
-    REQUIRE(judgement);
-    return *judgement;
-}
-
-std::vector<Code> delayed(const std::vector<Code>& response, int lag) {
-    std::vector<Code> late(response.size(), 0);
-    for (std::size_t n = 0; n < late.size(); ++n) {
-        const auto from = static_cast<std::ptrdiff_t>(n) - lag;
-        if (from >= 0 && from < static_cast<std::ptrdiff_t>(late.size()))
-            late[n] = response[static_cast<std::size_t>(from)];
-    }
-    return late;
-}
 
 }  // namespace
 
