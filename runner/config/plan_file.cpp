@@ -1,12 +1,16 @@
 #include "runner/config/plan_file.hpp"
 
 #include <algorithm>
+#include <deque>
+#include <iterator>
 #include <map>
 
 #include "oracle/judge/admission.hpp"
 #include "oracle/judge/case_judge.hpp"
 #include "runner/config/document.hpp"
+#include "runner/config/plan_each.hpp"
 #include "runner/config/plan_reader.hpp"
+#include "runner/config/plan_tree.hpp"
 #include "runner/config/plan_words.hpp"
 #include "stimuli/number_text.hpp"
 
@@ -16,17 +20,20 @@ namespace {
 
 /// A case's own rule takes the place of those for every case of the same kind; the latency of 0 that
 /// every case has without asking comes last.
-void add_common_rules(Case& the_case, const std::vector<Rule>& common) {
+void add_common_rules(Case& the_case, const std::vector<Rule>& common, bool filter_is_unknown) {
     const std::vector<Rule> own = the_case.rules;
     const auto kind_is = [](const Rule& a) { return [&a](const Rule& b) { return a.kind.index() == b.kind.index(); }; };
     for (const Rule& rule : common) {
         if (std::none_of(own.begin(), own.end(), kind_is(rule))) the_case.rules.push_back(rule);
     }
+    if (filter_is_unknown) return;
     const Rule latency{LatencyRule{0, true}, the_case.position};
     if (std::none_of(the_case.rules.begin(), the_case.rules.end(), kind_is(latency))) the_case.rules.push_back(latency);
 }
 
-Place place_of(const PlanPosition& position) { return {position.line, position.column}; }
+Place place_of(const PlanPosition& position, const Problems& problems) {
+    return problems.place_in(position.file, position.line, position.column);
+}
 
 /// A latency rule for every case is asked of the cases that can tell it and left to them by the others,
 /// as the implicit one is; when none can, it is refused.
@@ -38,103 +45,134 @@ void settle_common_latency(Plan& plan, const std::vector<Rule>& common, Problems
     for (Case& the_case : plan.cases) {
         for (Rule& rule : the_case.rules) {
             auto* latency = std::get_if<LatencyRule>(&rule.kind);
-            if (latency == nullptr || place_of(rule.position) != place_of(written->position)) continue;
+            if (latency == nullptr || rule.position != written->position) continue;
             is_asked = true;
             latency->implicit = !latency_evidence(plan, the_case).can_tell;
             is_told = is_told || !latency->implicit;
         }
     }
     if (is_asked && !is_told) {
-        problems.add(place_of(written->position), "no case of this plan can tell its latency",
+        problems.add(place_of(written->position, problems), "no case of this plan can tell its latency",
                      "add a case with noise (shape = \"noise\", level_ratio = 0.5, length_samples = 4096), or leave "
                      "the rule out");
     }
 }
 
+/// Whether it says something under rule, be it wrong.
+bool has_rule(const TomlValue& table) {
+    const TomlEntry* entry = table.find("rule");
+    return entry != nullptr && !(entry->value.kind == TomlValue::Kind::array && entry->value.items.empty());
+}
+
 class PlanFile {
 public:
-    PlanFile(const Document& document, const std::string& path, const Files& files, const PlanOptions& options)
-        : tree_(document.tree),
-          path_(path),
+    PlanFile(Document document, const std::string& path, const Files& files, const PlanOptions& options)
+        : document_(std::move(document)),
+          tree_(document_.tree),
+          shown_name_(options.shown_name.empty() ? path : options.shown_name),
           options_(options),
-          problems_(document.source),
-          context_{problems_, files, options.root.empty() ? folder_of(path) : options.root, std::nullopt} {}
+          problems_(document_.source, shown_name_),
+          context_{problems_, files, options.root.empty() ? folder_of(path) : options.root, std::nullopt, {}} {}
+
+    PlanFile(const PlanFile&) = delete;
+    PlanFile& operator=(const PlanFile&) = delete;
 
     std::variant<Plan, ReadProblems> read() {
+        if (!join_includes(document_, context_, included_)) return problems_.sorted();
         TableReader top(context_, tree_, "");
         const ParameterValues values = top.parameters(plan_recipe());
         // All words of the top are known before the tables below are read: the trap of a top-level key
         // under a header is told by them.
-        for (const std::string_view key : {"signal", "filter", "rule", "case"}) top.entry(key);
+        for (const std::string_view key : {"signal", "arithmetic", "filter", "rule", "case"}) top.entry(key);
+        top.entry(include_word);
         const auto signal = read_signal(context_, top);
         if (signal) context_.nyquist_hz = signal->rate_hz / 2.0;
-        auto chain = read_filters(context_, top);
-        const Signal* known_signal = signal ? &*signal : nullptr;
-        const ReadRules common = read_rules(context_, top, known_signal, path_);
-        std::vector<ReadCase> cases = read_cases(top, known_signal);
-        check_presence(top, common, cases);
+        const auto filters = read_filters(context_, top, signal ? &*signal : nullptr);
+        const PlanFacts facts{signal ? &*signal : nullptr, filters ? &*filters : nullptr};
+        const ReadRules common = read_rules(context_, top, facts);
+        std::vector<ReadCase> cases = read_cases(top, facts);
+        check_presence(top, common);
         top.refuse_unknown_keys();
 
-        if (signal && chain && common.is_clean) admit(*signal, *chain, common.rules, cases);
+        if (signal && filters && common.is_clean) admit(facts, common.rules, cases);
         if (problems_.count() > 0) return problems_.sorted();
         plan_.title = *values.text(plan_recipe(), "title");
+        plan_.parts.push_back({"", std::move(document_.bytes)});
+        std::move(context_.parts.begin(), context_.parts.end(), std::back_inserter(plan_.parts));
         return std::move(plan_);
     }
 
 private:
-    std::vector<ReadCase> read_cases(TableReader& top, const Signal* signal) {
+    std::vector<ReadCase> read_cases(TableReader& top, const PlanFacts& facts) {
+        std::vector<CaseExpansion> expansions;
+        for (const TomlValue* table : top.tables("case")) expansions.emplace_back(*table, problems_);
         std::vector<ReadCase> cases;
-        std::map<std::string, int> lines;
-        for (const TomlValue* table : top.tables("case")) {
-            cases.push_back(read_case(context_, *table, top, signal, path_, options_.seed));
-            const ReadCase& read = cases.back();
-            if (!read.name_place) continue;
-            const auto [first, is_new] = lines.emplace(read.the_case.name, read.name_place->line);
-            if (is_new) continue;
-            problems_.add(*read.name_place,
-                          "two cases are called " + quoted(read.the_case.name) + ", the other one in line " +
-                              std::to_string(first->second),
-                          "give each case a name of its own; --case chooses by it");
+        if (has_too_many(expansions, problems_)) return cases;
+        std::map<std::string, Place> names;
+        for (const CaseExpansion& expansion : expansions) {
+            if (!expansion.is_clean()) continue;
+            const auto count = static_cast<std::size_t>(expansion.count());
+            for (std::size_t i = 0; i < count; ++i) {
+                const auto table = expansion.at(i, problems_);
+                if (!table) continue;
+                cases.push_back(read_case(context_, *table, top, facts, options_.seed));
+                check_name(cases.back(), names);
+            }
         }
         return cases;
     }
 
-    void check_presence(TableReader& top, const ReadRules& common, const std::vector<ReadCase>& cases) {
-        if (tree_.find("case") == nullptr || (cases.empty() && tree_.find("case")->value.items.empty() &&
-                                              tree_.find("case")->value.kind == TomlValue::Kind::array)) {
+    void check_name(const ReadCase& read, std::map<std::string, Place>& names) {
+        if (!read.name_place) return;
+        const auto [first, is_new] = names.emplace(read.the_case.name, *read.name_place);
+        if (is_new) return;
+        problems_.add(*read.name_place,
+                      "two cases are called " + quoted(read.the_case.name) + ", the other one in " +
+                          problems_.line_text(first->second, *read.name_place),
+                      "give each case a name of its own; --case chooses by it");
+    }
+
+    void check_presence(TableReader& top, const ReadRules& common) {
+        const TomlEntry* cases = tree_.find("case");
+        if (cases == nullptr || (cases->value.kind == TomlValue::Kind::array && cases->value.items.empty())) {
             top.refuse(top.place_of("case"), "the file has no [[case]]",
                        "add one with a name, a [case.stimulus] and, unless there is a [[rule]], a [[case.rule]]");
             return;
         }
-        const bool has_rule = common.first || std::any_of(cases.begin(), cases.end(),
-                                                          [](const ReadCase& read) { return read.has_rules; });
-        if (!has_rule && tree_.find("rule") == nullptr) {
+        const bool has_own = std::any_of(cases->value.items.begin(), cases->value.items.end(),
+                                         [](const TomlValue& t) { return has_rule(t); });
+        if (!common.first && !has_rule(tree_) && !has_own) {
             top.refuse(top.place(), "the file has no rule, so it judges nothing",
                        "add a [[rule]] for every case, or a [[case.rule]] to one");
         }
     }
 
     /// Joins what was read, and asks the judge which rules the stimuli cannot answer.
-    void admit(const Signal& signal, FilterChain& chain, const std::vector<Rule>& common,
-               std::vector<ReadCase>& cases) {
-        plan_.file = path_;
-        plan_.signal = signal;
-        plan_.filter = std::move(chain);
+    void admit(const PlanFacts& facts, const std::vector<Rule>& common, std::vector<ReadCase>& cases) {
+        plan_.file = shown_name_;
+        plan_.signal = *facts.signal;
+        plan_.filter = facts.filters->chain;
+        plan_.filter_is_unknown = facts.filters->is_unknown;
         for (ReadCase& read : cases) {
             if (!read.is_clean) continue;
-            add_common_rules(read.the_case, common);
+            add_common_rules(read.the_case, common, plan_.filter_is_unknown);
             plan_.cases.push_back(std::move(read.the_case));
         }
+        const std::size_t before = problems_.count();
+        finish_cases(context_, plan_);
+        if (problems_.count() != before) return;
         settle_common_latency(plan_, common, problems_);
         for (const Case& the_case : plan_.cases) {
             for (const Refusal& refusal : refusals(plan_, the_case)) {
-                problems_.add(place_of(refusal.position), refusal.problem, refusal.remedy);
+                problems_.add(place_of(refusal.position, problems_), refusal.problem, refusal.remedy);
             }
         }
     }
 
+    Document document_;
+    std::deque<SourceText> included_;
     const TomlValue& tree_;
-    std::string path_;
+    std::string shown_name_;
     PlanOptions options_;
     Problems problems_;
     ReadContext context_;
@@ -153,15 +191,23 @@ std::optional<std::string> seed_problem(std::uint64_t seed) {
     return std::nullopt;
 }
 
+/// Told even when the plan names no file: a mistyped root must not wait for the first one that does.
+std::optional<std::string> root_problem(const std::string& root, const Files& files) {
+    if (root.empty() || !files.resolved(root + "/.").empty()) return std::nullopt;
+    return render_without_line("--root", "there is no folder " + quoted(root),
+                               "give a folder that exists; files that the plan names lie under it");
+}
+
 }  // namespace
 
 std::variant<Plan, ReadProblems> read_plan(const std::string& path, const Files& files, const PlanOptions& options) {
     if (options.seed) {
         if (auto problem = seed_problem(*options.seed)) return ReadProblems{{std::move(*problem)}};
     }
+    if (auto problem = root_problem(options.root, files)) return ReadProblems{{std::move(*problem)}};
     auto document = open_document(path, files, "docs/plan.md");
     if (auto* problems = std::get_if<ReadProblems>(&document)) return std::move(*problems);
-    return PlanFile(std::get<Document>(document), path, files, options).read();
+    return PlanFile(std::get<Document>(std::move(document)), path, files, options).read();
 }
 
 }  // namespace halflsb
