@@ -1,9 +1,9 @@
-#include "stimuli/number_text.hpp"
 #include "stimuli/values_check.hpp"
 
 #include <catch2/catch.hpp>
 #include <limits>
 
+#include "stimuli/number_text.hpp"
 #include "stimuli/stimulus.hpp"
 
 using namespace halflsb;
@@ -103,7 +103,8 @@ TEST_CASE("catalogue: every shape and parameter explains itself in one sentence"
             CHECK(parameter.choices.empty() == (parameter.type != ParameterType::choice));
         }
     }
-    CHECK(names == std::vector<std::string_view>{"step", "impulse", "chirp", "noise", "sine", "multitone"});
+    CHECK(names == std::vector<std::string_view>{"step", "impulse", "silence", "ramp", "square", "chirp", "noise",
+                                                 "prbs", "sine", "multitone", "burst", "file", "sequence"});
     CHECK(find_recipe(stimulus_recipes(), "nothing") == nullptr);
 }
 
