@@ -108,6 +108,22 @@ TEST_CASE("start: flush of a first case opens the stream itself", "[run]") {
     CHECK(bench.run.cases[0].verdict == CaseVerdict::pass);
 }
 
+TEST_CASE("start: zeros of an unsigned format are its mid-code", "[run]") {
+    const auto u16 = sample_format("u16");
+    REQUIRE(u16);
+    RunBench bench;
+    bench.model.filters[0].input = bench.model.filters[0].output = u16->wire_number;
+    bench.plan().signal.input = bench.plan().signal.output = *u16;
+    bench.add_noise("loud", 0.9);
+    Case& quiet = bench.add_noise("quiet", 0.01, 300);
+    quiet.start = Start::flush;
+    quiet.start_samples = 15;
+    REQUIRE(bench.go());
+    CHECK(bench.run.cases[0].verdict == CaseVerdict::pass);
+    CHECK(bench.run.cases[1].verdict == CaseVerdict::pass);
+    CHECK(bench.model.starts == 1);
+}
+
 TEST_CASE("start: running goes on where the case before ended, and all of it is recorded", "[run]") {
     RunBench bench;
     bench.add_noise("loud", 0.9);
