@@ -191,7 +191,7 @@ class PlanWords(Case):
             with self.subTest(start):
                 support.shutil.rmtree(self.folder / "run", ignore_errors=True)
                 self.link.unlink(missing_ok=True)
-                with self.emulated_board("cw7.elf"):
+                with self.emulated_board("halflsb-cw7.elf"):
                     done = self.check(self.plan(LOUD + quiet(start)), self.rig())
                 self.assert_status(done, status)
 

@@ -1,7 +1,6 @@
 // Words of every format and layout on the line, against the model board, which reads them by docs/wire.md alone.
-#include <catch2/catch.hpp>
-
 #include <algorithm>
+#include <catch2/catch.hpp>
 
 #include "tests/runner/wire/bench.hpp"
 
