@@ -43,6 +43,7 @@ struct Parameter {
     std::optional<double> default_value = {};    ///< of a number that may be left out
     std::vector<std::string_view> choices = {};  ///< of a choice, the first is the default unless required
     std::string_view help = {};                  ///< one sentence
+    bool optional_choice = false;                ///< a choice without a default: left out, it says nothing
 };
 
 /// A stimulus shape, filter kind or rule kind with its parameters, in the order docs show them.
