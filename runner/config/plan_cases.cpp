@@ -2,6 +2,7 @@
 #include <algorithm>
 #include <limits>
 
+#include "runner/config/plan_each.hpp"
 #include "runner/config/plan_reader.hpp"
 #include "runner/config/plan_words.hpp"
 #include "runner/world/printable.hpp"
@@ -169,6 +170,7 @@ public:
         the_case.labels = read_labels(reader_);
         // Known before its inner tables are read, so that a key of the case under their headers is told from
         // an unknown one.
+        reader_.entry(each_word);
         const TomlValue* stimulus_table = reader_.table("stimulus", true);
         the_case.settings = read_settings(context_, reader_);
 

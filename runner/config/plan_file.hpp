@@ -18,9 +18,14 @@ struct PlanOptions {
     std::string root;
     /// Takes the place of the seed of every stimulus that has one (--seed).
     std::optional<std::uint64_t> seed;
+    /// What Plan::file and every PlanPosition call the plan; "" is its path. Messages name the path in any event.
+    /// For a plan that was recorded with a run under its old name.
+    std::string shown_name = {};
 };
 
-/// A plan comes with a pull request: it can name no command, no link, and no file outside the root.
+/// A plan comes with a pull request: it can name no command, no link, and no file outside the root. What it
+/// includes is joined (plan_tree.hpp), [case.each] expanded (plan_each.hpp); positions in an included file call it
+/// by its path under the root.
 /// Costs up to one pass of the reference for each case with a written latency rule, which is refused
 /// where the case cannot tell (judge/admission.hpp).
 std::variant<Plan, ReadProblems> read_plan(const std::string& path, const Files& files,

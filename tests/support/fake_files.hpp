@@ -55,7 +55,14 @@ public:
         return std::unique_ptr<InputFile>(std::make_unique<FakeInputFile>(path, std::move(*bytes)));
     }
     bool exists(const std::string& path) const override { return contents.count(path) + folders.count(path) > 0; }
-    std::string resolved(const std::string& path) const override { return exists(path) ? path : std::string(); }
+    /// Of a folder with "/." behind it too; a folder is there when something lies in it.
+    std::string resolved(const std::string& path) const override {
+        if (!path.ends_with("/.")) return exists(path) ? path : std::string();
+        const std::string folder = path.substr(0, path.size() - 2);
+        const auto inside = contents.lower_bound(folder + "/");
+        const bool is_there = inside != contents.end() && inside->first.starts_with(folder + "/");
+        return is_there || folders.count(folder) > 0 ? folder : std::string();
+    }
 
     Outcome<void> write(const std::string& path, std::span<const std::byte> bytes) override {
         auto file = open_output(path);
