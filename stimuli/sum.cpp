@@ -77,9 +77,11 @@ std::vector<Spectrum::Band> joined_bands(std::vector<Spectrum::Band> bands) {
 }
 
 Parameter add_parameter() {
-    return {.name = "add",
-            .type = ParameterType::stimuli,
-            .help = "Stimuli added to this one, each with its shape, none longer; a sum beyond full scale saturates."};
+    return {
+        .name = "add",
+        .type = ParameterType::stimuli,
+        .help =
+            "Stimuli added to this one, each with its shape, none longer; integer formats saturate beyond full scale."};
 }
 
 StimulusOutcome make_sum(std::unique_ptr<const Stimulus> base, const std::vector<StimulusWords>& added,

@@ -97,6 +97,9 @@ std::optional<Error> numbers_misfit(const Parameter& parameter, const std::vecto
     if (numbers.empty()) return refused(parameter.name, "the array is empty", "Give at least one number.");
     for (const double number : numbers) {
         if (auto error = number_misfit(parameter, number)) return error;
+        if (parameter.type == ParameterType::integers && std::floor(number) != number) {
+            return refused(parameter.name, number_text(number) + " is no whole number", "Give whole numbers.");
+        }
     }
     return std::nullopt;
 }

@@ -41,7 +41,12 @@ const std::vector<FilterKind>& kinds() {
 
 Outcome<std::optional<int>> fraction_bits_of(const FilterKind& kind, const ParameterValues& values,
                                              const StageArithmetic& arithmetic) {
-    if (kind.complaint == nullptr) return std::optional<int>();
+    const bool is_shift = values.has("shift_bits");
+    if (is_shift && values.has(fraction_bits_name)) {
+        return refuse(fraction_bits_name, "a firmware that shifts stores no coefficient, and shift_bits is given",
+                      "leave " + std::string(fraction_bits_name) + " out, or give coefficient instead of shift_bits");
+    }
+    if (kind.complaint == nullptr || is_shift) return std::optional<int>();
     if (!values.has(fraction_bits_name)) return arithmetic.coefficient_fraction_bits;
     const auto bits = values.integer(kind.recipe, fraction_bits_name);
     if (!bits || *bits < 0 || *bits > static_cast<std::int64_t>(most_fraction_bits)) {

@@ -49,8 +49,8 @@ using FilterDesign = std::variant<MovingAverage, Fir, BiquadCascade, Comb>;
 struct FilterStage {
     FilterDesign design;
     /// The firmware stores each coefficient as a multiple of 2^-coefficient_fraction_bits, rounded
-    /// half away from zero (coefficients.hpp). A moving average has no coefficients and takes none. The arithmetic
-    /// of a stage that make_stage made says the same number.
+    /// half away from zero (coefficients.hpp). A moving average and a one-pole by shift have no coefficients and take
+    /// none. The arithmetic of a stage that make_stage made says the same number.
     std::optional<int> coefficient_fraction_bits;
     StageArithmetic arithmetic = {};
     std::string kind = {};           ///< as the plan calls it: "one-pole" is a BiquadCascade of one section

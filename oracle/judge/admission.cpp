@@ -2,8 +2,9 @@
 
 #include <algorithm>
 #include <charconv>
+#include <cstdlib>
 
-#include "oracle/judge/case_judge.hpp"
+#include "oracle/judge/latency_evidence.hpp"
 #include "oracle/judge/response_verdict.hpp"
 
 namespace halflsb {
@@ -15,14 +16,15 @@ std::string brief(double number) {
     return std::string(text, end);
 }
 
-constexpr std::int64_t noise_length_samples = 4096;
+/// Noise for a remedy: long enough once the discard of a running case is over.
+std::int64_t noise_samples(const Case& the_case) { return 4096 + first_judged_sample(the_case); }
 
 /// White noise has no second lag that looks like the first: would it do for this filter?
 bool noise_can_tell(const Plan& plan, const Case& the_case) {
     ParameterValues values;
-    values.set("length_samples", noise_length_samples);
+    values.set("length_samples", noise_samples(the_case));
     values.set("level_ratio", 0.5);
-    auto noise = make_stimulus("noise", values, {plan.signal.rate_hz, plan.signal.input});
+    auto noise = make_stimulus("noise", values, {rate_hz_of(plan, the_case), plan.signal.input});
     if (!noise) return false;
     Case trial = the_case;
     trial.stimulus = std::move(*noise);
@@ -30,26 +32,58 @@ bool noise_can_tell(const Plan& plan, const Case& the_case) {
 }
 
 void check_latency(const Plan& plan, const Case& the_case, const Rule& rule, std::vector<Refusal>& refusals) {
+    if (plan.filter_is_unknown) return;
     const LatencyEvidence evidence = latency_evidence(plan, the_case);
     if (evidence.can_tell) return;
     Refusal refusal{rule.position, {}, {}};
-    refusal.problem = "case \"" + the_case.name + "\" cannot tell its latency: a lag of " +
+    if (evidence.expected_is_outside) {
+        const int expected = expected_lag_of(the_case), window = lag_window_of(the_case);
+        refusal.problem = "case \"" + the_case.name + "\" is too short for a latency of " + std::to_string(expected) +
+                          (std::abs(expected) == 1 ? " sample" : " samples") + ": lags of -" + std::to_string(window) +
+                          " to " + std::to_string(window) + " can be told from " +
+                          std::to_string(judged_samples(the_case)) + " samples";
+        refusal.remedy = "give it at least " +
+                         std::to_string(first_judged_sample(the_case) + 2 * std::abs(expected) + 1) + " samples";
+        refusals.push_back(std::move(refusal));
+        return;
+    }
+    refusal.problem = "case \"" + the_case.name + "\" cannot tell its latency" +
+                      (evidence.channel > 0 ? " on channel " + std::to_string(evidence.channel) : "") + ": a lag of " +
                       std::to_string(evidence.hardest_lag) + " would leave a squared residual of " +
                       brief(evidence.smallest_ratio) + " sigma^2, below " + brief(latency_evidence_ratio);
-    if (the_case.stimulus->length_samples() > latency_evidence_samples(plan.filter)) {
-        refusal.problem += ", in its first " + std::to_string(latency_evidence_samples(plan.filter)) + " samples";
-    }
+    if (the_case.stimulus->length_samples() > evidence.samples)
+        refusal.problem += ", in its first " + std::to_string(evidence.samples) + " samples";
     refusal.remedy =
         noise_can_tell(plan, the_case)
             ? "give it noise (shape = \"noise\", level_ratio = 0.5, length_samples = " +
-                  std::to_string(noise_length_samples) + "), or write the rule in another case"
+                  std::to_string(noise_samples(the_case)) + "), or write the rule in another case"
             : "no stimulus of this filter tells it within these error limits; tighten rms_lsb or leave the rule out";
     refusals.push_back(std::move(refusal));
 }
 
+/// The first samples of a running case hang on the case before, and the hash of an accepted run is over all of them.
+void check_unchanged(const Case& the_case, const Rule& rule, std::vector<Refusal>& refusals) {
+    if (the_case.start != Start::running) return;
+    refusals.push_back({rule.position,
+                        "case \"" + the_case.name +
+                            "\" starts running, so its first samples hang on what ran before it and cannot equal "
+                            "those of an accepted run",
+                        "start it with \"reset\" or \"flush\", or write the rule in another case"});
+}
+
+/// A running case must have something left to judge.
+void check_discard(const Case& the_case, std::vector<Refusal>& refusals) {
+    if (judged_samples(the_case) > 0) return;
+    const std::string length = std::to_string(the_case.stimulus->length_samples());
+    refusals.push_back({the_case.position,
+                        "case \"" + the_case.name + "\" discards its first " + std::to_string(the_case.start_samples) +
+                            " samples and has only " + length,
+                        "discard fewer than " + length + ", or lengthen the stimulus"});
+}
+
 void check_response(const Plan& plan, const Case& the_case, const Rule& rule, std::vector<Refusal>& refusals) {
-    const Stimulus& stimulus = *the_case.stimulus;
-    const Spectrum spectrum = stimulus.spectrum();
+    if (plan.filter_is_unknown) return;
+    const Spectrum spectrum = the_case.stimulus->spectrum();
     const std::string noise = "use noise or a chirp over that band";
     if (spectrum.tones.empty() && spectrum.bands.empty()) {
         refusals.push_back(
@@ -58,7 +92,7 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
              "use noise, a chirp, a sine or a multitone"});
         return;
     }
-    const std::int64_t length = stimulus.length_samples();
+    const std::int64_t length = judged_samples(the_case);
     if (!tones_resolved(spectrum.tones, length)) {
         refusals.push_back(
             {rule.position,
@@ -76,11 +110,11 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
         return;
     }
     for (const ResponseBand& band : std::get<ResponseRule>(rule.kind).bands) {
-        if (!answerable_hz(band, stimulus, plan.signal.rate_hz).empty()) continue;
+        if (!answerable_hz(band, the_case, rate_hz_of(plan, the_case)).empty()) continue;
         const std::string band_text = brief(band.from_hz) + " to " + brief(band.to_hz) + " Hz";
         std::string remedy = noise;
         if (spectrum.tones.empty()) {
-            const double spacing_hz = plan.signal.rate_hz / static_cast<double>(response_segment_for(length));
+            const double spacing_hz = rate_hz_of(plan, the_case) / static_cast<double>(response_segment_for(length));
             remedy += "; its bins are " + brief(spacing_hz) + " Hz apart, a longer record brings them closer";
         } else {
             remedy += ", or a multitone with a tone in it";
@@ -95,11 +129,15 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
 
 std::vector<Refusal> refusals(const Plan& plan, const Case& the_case) {
     std::vector<Refusal> found;
+    check_discard(the_case, found);
+    if (!found.empty()) return found;
     for (const Rule& rule : the_case.rules) {
         if (const auto* latency = std::get_if<LatencyRule>(&rule.kind); latency != nullptr && !latency->implicit) {
             check_latency(plan, the_case, rule, found);
         } else if (std::holds_alternative<ResponseRule>(rule.kind)) {
             check_response(plan, the_case, rule, found);
+        } else if (std::holds_alternative<UnchangedRule>(rule.kind)) {
+            check_unchanged(the_case, rule, found);
         }
     }
     return found;

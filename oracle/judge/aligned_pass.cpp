@@ -18,34 +18,43 @@ JudgedFigure at_most(std::string name, double value, double limit, std::string u
 
 }  // namespace
 
-AlignedPass::AlignedPass(const Plan& plan, const Case& the_case, int lag_samples)
+AlignedPass::AlignedPass(const Plan& plan, const Case& the_case, int channel, int lag_samples)
     : plan_(plan),
       case_(the_case),
+      channel_(channel),
+      is_driven_(is_driven(the_case, channel)),
       lag_(lag_samples),
+      first_judged_(first_judged_sample(the_case)),
       to_skip_(lag_samples < 0 ? static_cast<std::size_t>(-lag_samples) : 0) {
-    const double step = plan.signal.output.has_lsb() ? lsb_value(plan.signal.output) : 1.0;
+    if (first_judged_ > 0 && lag_samples > 0) first_judged_ += lag_samples;
     bool wants_response = false;
     for (const Rule& rule : the_case.rules) {
-        if (const auto* error = std::get_if<ErrorRule>(&rule.kind)) {
+        if (const auto* error = std::get_if<ErrorRule>(&rule.kind); error != nullptr && says_something(*error)) {
             std::optional<double> limit;
             if (error->largest) limit = value_of(*error->largest, plan.signal);
-            error_rules_.push_back({&rule, ErrorMeasure(limit), FirstBadWatch(step)});
+            error_rules_.push_back({&rule, ErrorMeasure(limit), FirstBadWatch(plan.signal.output)});
+            error_rules_.back().measure.start_at(first_judged_);
         }
-        wants_response = wants_response || std::holds_alternative<ResponseRule>(rule.kind);
+        wants_response = wants_response || (is_driven_ && std::holds_alternative<ResponseRule>(rule.kind));
     }
-    if (wants_response) response_measure_ = make_response_measure(*the_case.stimulus);
+    if (wants_response) response_measure_ = make_response_measure(the_case);
     if (lag_samples > 0) {
         const auto silence = static_cast<std::size_t>(lag_samples);
-        codes_.assign(silence, 0);
+        codes_.assign(silence, zero_code(plan.signal.input));
         stimulus_.assign(silence, 0.0);
         declared_.assign(silence, 0.0);
         if (wants_response) design_.assign(silence, 0.0);
     }
 }
 
+bool AlignedPass::says_something(const ErrorRule& rule) const {
+    // A channel that got zeros has a silent reference, so its SNR is no figure.
+    return is_driven_ || rule.largest || rule.rms || rule.bias;
+}
+
 void AlignedPass::add(const ReferenceBlock& reference, std::span<const Code> response) {
     if (lag_ == 0) {
-        measure(reference.codes, reference.stimulus, reference.declared, reference.design, response);
+        measure_judged(reference.codes, reference.stimulus, reference.declared, reference.design, response);
         return;
     }
     const auto skip = std::min(to_skip_, reference.codes.size());
@@ -62,7 +71,7 @@ void AlignedPass::add(const ReferenceBlock& reference, std::span<const Code> res
 
     const std::size_t ready = std::min(codes_.size(), response_.size());
     const auto head = [ready](auto& waiting) { return std::span(waiting).first(std::min(ready, waiting.size())); };
-    measure(head(codes_), head(stimulus_), head(declared_), head(design_), head(response_));
+    measure_judged(head(codes_), head(stimulus_), head(declared_), head(design_), head(response_));
     const auto drop = [ready](auto& waiting) {
         waiting.erase(waiting.begin(), waiting.begin() + static_cast<std::ptrdiff_t>(std::min(ready, waiting.size())));
     };
@@ -71,6 +80,16 @@ void AlignedPass::add(const ReferenceBlock& reference, std::span<const Code> res
     drop(declared_);
     drop(design_);
     drop(response_);
+}
+
+void AlignedPass::measure_judged(std::span<const Code> codes, std::span<const double> stimulus,
+                                 std::span<const double> declared, std::span<const double> design,
+                                 std::span<const Code> response) {
+    const auto count = static_cast<std::int64_t>(response.size());
+    const auto unjudged = static_cast<std::size_t>(std::clamp<std::int64_t>(first_judged_ - next_index_, 0, count));
+    next_index_ += static_cast<std::int64_t>(unjudged);
+    const auto rest = [unjudged](auto span) { return span.subspan(std::min(unjudged, span.size())); };
+    measure(rest(codes), rest(stimulus), rest(declared), rest(design), rest(response));
 }
 
 void AlignedPass::measure(std::span<const Code> codes, std::span<const double> stimulus,
@@ -117,7 +136,7 @@ RuleVerdict AlignedPass::error_verdict(const ErrorRuleState& state) const {
     told(rule.bias, "bias", rule.bias ? std::abs(figures.bias) : figures.bias);
     // The limit holds for the magnitude; which way the firmware leans is the first thing its author asks.
     if (rule.bias && figures.bias < 0.0) verdict.figures.back().note = "negative";
-    if (rule.min_snr_db || figures.snr_db) {
+    if (is_driven_ && (rule.min_snr_db || figures.snr_db)) {
         JudgedFigure snr{"snr", std::nullopt, std::nullopt, std::nullopt, "dB", true, true, {}};
         if (figures.snr_db) snr.value = judged(*figures.snr_db);
         if (rule.min_snr_db) {
@@ -151,20 +170,15 @@ RuleVerdict AlignedPass::error_verdict(const ErrorRuleState& state) const {
     return verdict;
 }
 
-std::vector<RuleVerdict> AlignedPass::verdicts() const {
-    std::vector<RuleVerdict> verdicts;
-    for (const Rule& rule : case_.rules) {
-        if (const auto* response = std::get_if<ResponseRule>(&rule.kind)) {
-            verdicts.push_back(judge_response(*response, rule, plan_, *case_.stimulus, response_measure_->value()));
-        } else if (std::holds_alternative<ErrorRule>(rule.kind)) {
-            for (const ErrorRuleState& state : error_rules_) {
-                if (state.rule == &rule) verdicts.push_back(error_verdict(state));
-            }
-        } else if (std::holds_alternative<UnchangedRule>(rule.kind)) {
-            verdicts.push_back({rule, Verdict::undecided, "accepted", {}, "not judged", std::nullopt});
-        }
+std::optional<RuleVerdict> AlignedPass::verdict(const Rule& rule) const {
+    if (const auto* response = std::get_if<ResponseRule>(&rule.kind)) {
+        if (!response_measure_) return std::nullopt;
+        return judge_response(*response, rule, plan_, case_, channel_, response_measure_->value());
     }
-    return verdicts;
+    for (const ErrorRuleState& state : error_rules_) {
+        if (state.rule == &rule) return error_verdict(state);
+    }
+    return std::nullopt;
 }
 
 bool AlignedPass::error_rules_pass() const {

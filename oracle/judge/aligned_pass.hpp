@@ -1,8 +1,9 @@
-// One pass over a case at one lag: response sample n is held against reference sample n - lag.
+// One pass over a channel of a case at one lag: response sample n is held against reference sample n - lag.
 //
 // Lags count the response behind the reference. Before its start the reference is silent, so with a
 // positive lag the first samples are held against zero; with a negative lag the last samples of the
-// response have no partner and are left out.
+// response have no partner and are left out. Of a running case a pair counts only when both of its samples
+// come after the discard: neither board nor reference has settled before. Indices are those of the response.
 #pragma once
 
 #include <cstdint>
@@ -11,6 +12,7 @@
 #include <span>
 #include <vector>
 
+#include "oracle/judge/first_bad_watch.hpp"
 #include "oracle/judge/plan.hpp"
 #include "oracle/judge/reference_source.hpp"
 #include "oracle/judge/verdict.hpp"
@@ -19,31 +21,16 @@
 
 namespace halflsb {
 
-/// Keeps the codes around the first sample that is beyond a limit.
-class FirstBadWatch {
-public:
-    static constexpr std::int64_t neighbours = 4;  ///< on either side
-    explicit FirstBadWatch(double reference_step) : reference_step_(reference_step) {}
-    /// `first_beyond` as the error measure has it after this block; -1 while there is none.
-    void add(std::int64_t first_index, std::span<const Code> stimulus, std::span<const double> reference,
-             std::span<const Code> response, std::int64_t first_beyond);
-    const std::optional<Neighbourhood>& found() const { return found_; }
-
-private:
-    double reference_step_;
-    std::optional<Neighbourhood> found_;
-    Neighbourhood recent_;  ///< the last samples seen while nothing is found
-};
-
 class AlignedPass {
 public:
-    /// The plan and the case must outlive the pass.
-    AlignedPass(const Plan& plan, const Case& the_case, int lag_samples);
+    /// The plan and the case must outlive the pass; channels count from 1.
+    AlignedPass(const Plan& plan, const Case& the_case, int channel, int lag_samples);
     void add(const ReferenceBlock& reference, std::span<const Code> response);
 
     int lag_samples() const { return lag_; }
-    /// Verdicts of the case's error and response rules, in their order; the latency rule is left out.
-    std::vector<RuleVerdict> verdicts() const;
+    /// On a rule of the case: none for kinds other than error and response, and for what says nothing of a channel
+    /// that is not driven (a response rule, an error rule that limits only the SNR).
+    std::optional<RuleVerdict> verdict(const Rule& rule) const;
     /// Every error rule passes; true when the case has none.
     bool error_rules_pass() const;
     bool has_error_rules() const { return !error_rules_.empty(); }
@@ -54,14 +41,20 @@ private:
         ErrorMeasure measure;
         FirstBadWatch watch;
     };
+    bool says_something(const ErrorRule& rule) const;
+    void measure_judged(std::span<const Code> codes, std::span<const double> stimulus, std::span<const double> declared,
+                        std::span<const double> design, std::span<const Code> response);
     void measure(std::span<const Code> codes, std::span<const double> stimulus, std::span<const double> declared,
                  std::span<const double> design, std::span<const Code> response);
     RuleVerdict error_verdict(const ErrorRuleState& state) const;
 
     const Plan& plan_;
     const Case& case_;
+    int channel_;
+    bool is_driven_;
     int lag_;
-    std::int64_t next_index_ = 0;
+    std::int64_t first_judged_;
+    std::int64_t next_index_ = 0;  ///< of the next response sample that meets its partner
     std::vector<ErrorRuleState> error_rules_;
     std::unique_ptr<ResponseMeasure> response_measure_;
     // What waits for its partner.

@@ -1,4 +1,4 @@
-// Stimulus codes of a case and what the two references say of them, block by block from index 0.
+// What the two references say of the codes that a channel got, block by block from index 0.
 #pragma once
 
 #include <cstdint>
@@ -21,16 +21,15 @@ struct ReferenceBlock {
 
 class ReferenceSource {
 public:
-    ReferenceSource(const Plan& plan, const Case& the_case, bool with_design);
-    /// The next `count` samples; the block is good until the next call.
-    ReferenceBlock next(std::size_t count);
+    /// Of one channel, counted from 1: both references start from rest. The plan must outlive the source.
+    ReferenceSource(const Plan& plan, const Case& the_case, int channel, bool with_design);
+    /// `codes` are the channel's next ones; the block is good until the next call, and no longer than they are.
+    ReferenceBlock next(std::span<const Code> codes);
 
 private:
     const Signal& signal_;
-    std::shared_ptr<const Stimulus> stimulus_;
     std::unique_ptr<Filter> declared_filter_, design_filter_;
     std::int64_t next_index_ = 0;
-    std::vector<Code> codes_;
     std::vector<double> values_, declared_, design_;
 };
 

@@ -53,20 +53,20 @@ JudgedFigure held(const Extreme& extreme, double limit_db, bool at_least, const 
 
 }  // namespace
 
-std::unique_ptr<ResponseMeasure> make_response_measure(const Stimulus& stimulus) {
-    const Spectrum spectrum = stimulus.spectrum();
-    if (!spectrum.tones.empty()) return make_tone_response(spectrum.tones, stimulus.length_samples());
-    return make_welch_response(response_segment_for(stimulus.length_samples()));
+std::unique_ptr<ResponseMeasure> make_response_measure(const Case& the_case) {
+    const Spectrum spectrum = the_case.stimulus->spectrum();
+    if (!spectrum.tones.empty()) return make_tone_response(spectrum.tones, judged_samples(the_case));
+    return make_welch_response(response_segment_for(judged_samples(the_case)));
 }
 
-std::vector<double> answerable_hz(const ResponseBand& band, const Stimulus& stimulus, double rate_hz) {
-    const Spectrum spectrum = stimulus.spectrum();
+std::vector<double> answerable_hz(const ResponseBand& band, const Case& the_case, double rate_hz) {
+    const Spectrum spectrum = the_case.stimulus->spectrum();
     std::vector<double> found;
     for (const double tone : spectrum.tones) {
         if (within(tone * rate_hz, band)) found.push_back(tone * rate_hz);
     }
     if (!spectrum.tones.empty()) return found;
-    const std::size_t segment = response_segment_for(stimulus.length_samples());
+    const std::size_t segment = response_segment_for(judged_samples(the_case));
     for (std::size_t bin = 0; bin <= segment / 2; ++bin) {
         const double cycles_per_sample = static_cast<double>(bin) / static_cast<double>(segment);
         if (within(cycles_per_sample * rate_hz, band) && has_power(spectrum, cycles_per_sample))
@@ -75,17 +75,19 @@ std::vector<double> answerable_hz(const ResponseBand& band, const Stimulus& stim
     return found;
 }
 
-RuleVerdict judge_response(const ResponseRule& rule, const Rule& asked, const Plan& plan, const Stimulus& stimulus,
-                           const std::vector<ResponsePoint>& points) {
+RuleVerdict judge_response(const ResponseRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
+                           int channel, const std::vector<ResponsePoint>& points) {
     RuleVerdict verdict{asked, Verdict::pass, "design", {}, {}, std::nullopt};
-    const Spectrum spectrum = stimulus.spectrum();
+    const Spectrum spectrum = the_case.stimulus->spectrum();
+    const FilterChain chain = chain_of(plan, the_case, channel);
+    const double rate_hz = rate_hz_of(plan, the_case);
     for (const ResponseBand& band : rule.bands) {
         std::optional<Extreme> lowest, highest;
         for (const ResponsePoint& point : points) {
-            const double hz = point.cycles_per_sample * plan.signal.rate_hz;
+            const double hz = point.cycles_per_sample * rate_hz;
             if (!within(hz, band) || (spectrum.tones.empty() && !has_power(spectrum, point.cycles_per_sample)))
                 continue;
-            const std::complex<double> design = response_at(plan.filter, point.cycles_per_sample);
+            const std::complex<double> design = response_at(chain, point.cycles_per_sample);
             double measured_db = gain_db(design + point.difference);
             if (rule.relative_to_design) measured_db -= gain_db(design);
             // NaN must not hide behind a comparison that is false.

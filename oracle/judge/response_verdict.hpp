@@ -11,15 +11,15 @@
 
 namespace halflsb {
 
-/// Tones are measured at their frequencies over the whole record, everything else by Welch's method.
-std::unique_ptr<ResponseMeasure> make_response_measure(const Stimulus& stimulus);
+/// Tones are measured at their frequencies over all judged samples, everything else by Welch's method.
+std::unique_ptr<ResponseMeasure> make_response_measure(const Case& the_case);
 
-/// Frequencies in Hz at which this stimulus can answer for the band, edges included; empty when it
+/// Frequencies in Hz at which this case can answer for the band, edges included; empty when its stimulus
 /// has no power there or no bin falls into the band.
-std::vector<double> answerable_hz(const ResponseBand& band, const Stimulus& stimulus, double rate_hz);
+std::vector<double> answerable_hz(const ResponseBand& band, const Case& the_case, double rate_hz);
 
-/// Held against `design`. A band without a point is undecided.
-RuleVerdict judge_response(const ResponseRule& rule, const Rule& asked, const Plan& plan, const Stimulus& stimulus,
-                           const std::vector<ResponsePoint>& points);
+/// Held against `design`, that of the channel (counted from 1). A band without a point is undecided.
+RuleVerdict judge_response(const ResponseRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
+                           int channel, const std::vector<ResponsePoint>& points);
 
 }  // namespace halflsb

@@ -79,8 +79,9 @@ int lag_window_for(std::int64_t length_samples) {
     return static_cast<int>(std::clamp<std::int64_t>(half, 0, lag_window_samples));
 }
 
-LagSums::LagSums(int window)
+LagSums::LagSums(int window, std::int64_t first_summed)
     : window_(std::max(window, 0)),
+      past_left_(std::max<std::int64_t>(first_summed, 0)),
       r_(stretch_samples + 2 * past(window), 0.0),
       y_(stretch_samples + past(window), 0.0),
       sums_(2 * past(window) + 1, 0.0) {}
@@ -95,9 +96,19 @@ void LagSums::add_stretch(std::size_t count, std::vector<double>& sums) const {
     for (; i < sums.size(); ++i) add_single(y_.data(), r_.data() + i, count, sums.data() + i);
 }
 
+// The front of r_ holds the `window` samples before the first n; the newest ones push the others out.
+void LagSums::add_past(std::span<const double> r) {
+    const auto front = std::span(r_).first(past(window_));
+    const std::size_t fresh = std::min(r.size(), front.size());
+    std::copy(front.begin() + static_cast<std::ptrdiff_t>(fresh), front.end(), front.begin());
+    std::copy_n(r.end() - static_cast<std::ptrdiff_t>(fresh), fresh, front.end() - static_cast<std::ptrdiff_t>(fresh));
+}
+
 void LagSums::add(std::span<const double> r, std::span<const double> y) {
     const std::size_t before = past(window_);
-    std::size_t done = 0;
+    auto done = static_cast<std::size_t>(std::min<std::int64_t>(past_left_, static_cast<std::int64_t>(r.size())));
+    past_left_ -= static_cast<std::int64_t>(done);
+    add_past(r.first(done));
     while (done < r.size()) {
         const std::size_t count = std::min(r.size() - done, y_.size() - held_);
         std::copy_n(r.data() + done, count, r_.data() + before + held_);
@@ -120,7 +131,8 @@ std::vector<double> LagSums::residual() const {
     return sums;
 }
 
-LagMeasure::LagMeasure(int window, int expected_lag) : sums_(window), expected_lag_(expected_lag) {}
+LagMeasure::LagMeasure(int window, int expected_lag, std::int64_t first_summed)
+    : sums_(window, first_summed), expected_lag_(expected_lag) {}
 
 void LagMeasure::add(std::span<const double> reference, std::span<const double> response) {
     sums_.add(reference, response);
@@ -135,7 +147,7 @@ LagFigures LagMeasure::value() const {
     return figures;
 }
 
-LagDiscrimination::LagDiscrimination(int window) : sums_(window) {}
+LagDiscrimination::LagDiscrimination(int window, std::int64_t first_summed) : sums_(window, first_summed) {}
 
 void LagDiscrimination::add(std::span<const double> reference) { sums_.add(reference, reference); }
 

@@ -168,6 +168,7 @@ public:
         Case& the_case = read_.the_case;
         the_case.rate_hz = values.number(recipe, "rate_hz");
         the_case.labels = read_labels(reader_);
+        reader_.entry(each_word);
         // Known before its inner tables are read, so that a key of the case under their headers is told from
         // an unknown one.
         reader_.entry(each_word);
@@ -187,7 +188,6 @@ public:
         read_start(reader_, values, stimulus ? stimulus->stimulus.get() : nullptr, the_case);
         read_filter_at(reader_, facts_, rate_hz, the_case);
         reader_.refuse_unknown_keys();
-        read_.has_rules = rules.first.has_value();
         read_.is_clean = reader_.is_clean() && stimulus && rules.is_clean;
         if (!read_.is_clean) return std::move(read_);
         the_case.shape = stimulus->shape;

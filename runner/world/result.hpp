@@ -36,7 +36,7 @@ struct FirmwareCheck {
 
 /// How a case travelled.
 struct StreamFacts {
-    std::int64_t samples_sent = 0, samples_received = 0;
+    std::int64_t samples_sent = 0, samples_received = 0;  ///< instants, the zeros of a flush among them
     std::int64_t bytes_to_board = 0, bytes_to_host = 0;
     std::int64_t frames_bad_at_host = 0, resends = 0;
     /// The board's own counters; none when it was not or could not be asked.
@@ -44,7 +44,7 @@ struct StreamFacts {
     double streaming_s = 0.0;
     /// Bytes of the busier direction x 10 / baud, over streaming_s; none where baud has no meaning.
     std::optional<double> line_use_ratio;
-    std::uint64_t ticks_total = 0;
+    std::uint64_t ticks_total = 0;    ///< of the stimulus, without the zeros of a flush
     std::uint32_t ticks_largest = 0;  ///< of one sample
 };
 
@@ -85,6 +85,7 @@ struct CaseResult {
     std::vector<CaseSetting> settings;
     std::vector<AttemptResult> attempts;  ///< the invalid ones before this
     std::string rerun;                    ///< the command that repeats this case alone
+    std::optional<double> rate_hz;        ///< of the case, where it is not the signal's
 };
 
 struct Counts {
@@ -108,6 +109,9 @@ struct RunResult {
     std::optional<Error> ended_by;
     std::string folder;
     double elapsed_s = 0.0;
+    std::vector<PlanPart> plan_parts;  ///< files that the plan was read from, as in Plan
+    std::string root;                  ///< of --root; "" is the plan's own folder
+    int attempts_allowed = 0;          ///< at one case, by the rig; 0 where that is not known
 
     Counts counts() const;
     /// Some case could tell its latency.

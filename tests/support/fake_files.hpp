@@ -101,7 +101,8 @@ private:
 
     class FakeOutputFile final : public OutputFile {
     public:
-        FakeOutputFile(FakeFiles& files, std::string path) : files_(files), path_(std::move(path)) {}
+        FakeOutputFile(FakeFiles& files, std::string path)
+            : files_(files), path_(std::move(path)), part_path_(path_ + ".part") {}
         ~FakeOutputFile() override { discard(); }
         FakeOutputFile(const FakeOutputFile&) = delete;
         FakeOutputFile& operator=(const FakeOutputFile&) = delete;
@@ -123,24 +124,25 @@ private:
             std::copy(from.begin(), from.end(), bytes.begin());
             return {};
         }
+        void rename(const std::string& path) override { path_ = path; }
         Outcome<void> commit() override {
             if (auto failed = files_.fail_when_asked(); !failed) return failed;
             files_.contents[path_] = part();
-            files_.contents.erase(path_ + ".part");
+            files_.contents.erase(part_path_);
             files_.written_paths.push_back(path_);
             done_ = true;
             return {};
         }
         void discard() override {
-            if (!done_) files_.contents.erase(path_ + ".part");
+            if (!done_) files_.contents.erase(part_path_);
             done_ = true;
         }
 
     private:
-        std::string& part() { return files_.contents[path_ + ".part"]; }
+        std::string& part() { return files_.contents[part_path_]; }
 
         FakeFiles& files_;
-        std::string path_;
+        std::string path_, part_path_;
         bool done_ = false;
     };
 

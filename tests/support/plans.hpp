@@ -56,15 +56,23 @@ inline Case a_case(const Plan& plan, const std::string& shape, const ParameterVa
     return made;
 }
 
-/// What a right board returns: the declared reference, rounded once, half up.
+/// What a right board returns: the declared reference of each channel, rounded once, half up; the codes of an
+/// instant adjacent.
 inline std::vector<Code> right_response(const Plan& plan, const Case& the_case) {
     const auto length = static_cast<std::size_t>(the_case.stimulus->length_samples());
-    std::vector<Code> codes(length);
+    const auto channels = static_cast<std::size_t>(plan.signal.channels);
+    std::vector<Code> codes(length * channels), one(length);
     std::vector<double> in(length), out(length);
-    fill_codes(*the_case.stimulus, plan.signal.input, plan.signal.quantise, 0, codes);
-    values_of(plan.signal.input, codes, in);
-    make_declared_filter(plan.filter, plan.signal.output, plan.signal.output_per_input)->process(in, out);
-    for (std::size_t n = 0; n < length; ++n) codes[n] = code_of(plan.signal.output, out[n], Rounding::half_up);
+    fill_case_codes(plan, the_case, 0, codes);
+    for (std::size_t c = 0; c < channels; ++c) {
+        for (std::size_t n = 0; n < length; ++n) one[n] = codes[n * channels + c];
+        values_of(plan.signal.input, one, in);
+        make_declared_filter(chain_of(plan, the_case, static_cast<int>(c) + 1), plan.signal.output,
+                             plan.signal.output_per_input)
+            ->process(in, out);
+        for (std::size_t n = 0; n < length; ++n)
+            codes[n * channels + c] = code_of(plan.signal.output, out[n], Rounding::half_up);
+    }
     return codes;
 }
 

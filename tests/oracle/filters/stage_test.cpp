@@ -63,6 +63,21 @@ TEST_CASE("stage: coefficient bits come from the filter, else from its arithmeti
     CHECK(average->arithmetic.rounding == Rounding::half_up);
 }
 
+TEST_CASE("stage: a one-pole that shifts stores no coefficient", "[filters]") {
+    StageContext context;
+    context.arithmetic.coefficient_fraction_bits = 8;
+    // 2^-10 in 8 bits would be 0, but nothing is stored in 8 bits.
+    const auto made = make("one-pole", {{"shift_bits", whole(10)}}, context);
+    REQUIRE(made);
+    CHECK_FALSE(made->coefficient_fraction_bits);
+    CHECK(refusal("one-pole", {{"coefficient", 0x1p-10}}, context) ==
+          "coefficient_fraction_bits: with 8 fraction bits the coefficient is 0, and the output never moves\n"
+          "  store the coefficients with 9 fraction bits or more");
+    CHECK(refusal("one-pole", {{"shift_bits", whole(10)}, {"coefficient_fraction_bits", whole(15)}}) ==
+          "coefficient_fraction_bits: a firmware that shifts stores no coefficient, and shift_bits is given\n"
+          "  leave coefficient_fraction_bits out, or give coefficient instead of shift_bits");
+}
+
 TEST_CASE("stage: inherited coefficient bits that do not do are refused by the same words", "[filters]") {
     StageContext context;
     context.arithmetic.coefficient_fraction_bits = 3;

@@ -5,39 +5,18 @@
 #include <limits>
 
 #include "oracle/judge/units.hpp"
+#include "tests/oracle/judge/judging.hpp"
 #include "tests/support/plans.hpp"
 
 using namespace halflsb;
+using test::delayed;
+using test::judge;
 using test::values;
 
 namespace {
 
 const ParameterValues noise =
     values({{"level_ratio", 0.9}, {"length_samples", std::int64_t{3000}}, {"seed", std::int64_t{5}}});
-
-CaseJudgement judge(const Plan& plan, const Case& the_case, const std::vector<Code>& response,
-                    std::size_t block = 256) {
-    CaseJudge judge(plan, the_case);
-    for (std::size_t first = 0; first < response.size(); first += block) {
-        judge.add(std::span(response).subspan(first, std::min(block, response.size() - first)));
-    }
-    auto judgement = judge.finish([&](std::int64_t first, std::span<Code> codes) -> Outcome<void> {
-        std::copy_n(response.begin() + first, codes.size(), codes.begin());
-        return {};
-    });
-    REQUIRE(judgement);
-    return *judgement;
-}
-
-std::vector<Code> delayed(const std::vector<Code>& response, int lag) {
-    std::vector<Code> late(response.size(), 0);
-    for (std::size_t n = 0; n < late.size(); ++n) {
-        const auto from = static_cast<std::ptrdiff_t>(n) - lag;
-        if (from >= 0 && from < static_cast<std::ptrdiff_t>(late.size()))
-            late[n] = response[static_cast<std::size_t>(from)];
-    }
-    return late;
-}
 
 }  // namespace
 
@@ -167,6 +146,26 @@ TEST_CASE("case judge: an expected latency of three is right at three and wrong 
     CHECK(early.rules[0].verdict == Verdict::fail);
     CHECK(*early.rules[0].figures[0].value == 0.0);
     CHECK(early.rules[1].verdict == Verdict::pass);
+}
+
+TEST_CASE("case judge: a latency that a short case's window does not reach is undecided", "[judge]") {
+    const Plan plan = test::moving_average_plan();
+    const auto ruled = [&](std::int64_t length, std::int64_t expected) {
+        return test::a_case(plan, "noise", values({{"level_ratio", 0.9}, {"length_samples", length}}),
+                            {test::rule(plan, "latency", values({{"latency_samples", expected}}))});
+    };
+    for (const std::int64_t expected : {40, -40}) {
+        const Case enough = ruled(81, expected), too_short = ruled(80, expected);
+        const auto late = delayed(test::right_response(plan, enough), static_cast<int>(expected));
+        CHECK(judge(plan, enough, late).latency_told);
+        const CaseJudgement judgement = judge(plan, too_short, test::right_response(plan, too_short));
+        CHECK_FALSE(judgement.latency_told);
+        REQUIRE(judgement.rules.size() == 1);
+        CHECK(judgement.rules[0].verdict == Verdict::undecided);
+        CHECK(judgement.rules[0].reason == "this stimulus cannot tell the latency");
+        CHECK_FALSE(latency_evidence(plan, too_short).can_tell);
+        CHECK(latency_evidence(plan, enough).can_tell);
+    }
 }
 
 TEST_CASE("case judge: a late and wrong response fails latency by its hundredfold smaller residual", "[judge]") {

@@ -216,6 +216,30 @@ TEST_CASE("files: an output file is invisible until it is committed", "[files]")
     CHECK(get(folder / "f") == "HEADabcdefghi");
 }
 
+TEST_CASE("files: a growing file may take another name in the end", "[files]") {
+    const TemporaryFolder folder;
+    DiskFiles files;
+    put(folder / "f", "old");
+    {
+        auto file = files.open_output(folder / "f");
+        REQUIRE(file);
+        REQUIRE((*file)->write(bytes_of("new")));
+        (*file)->rename(folder / "f.attempt-1");
+        CHECK(files.exists(folder / "f.part"));
+        REQUIRE((*file)->commit());
+    }
+    CHECK(get(folder / "f.attempt-1") == "new");
+    CHECK(get(folder / "f") == "old");
+    CHECK(!files.exists(folder / "f.part"));
+    {
+        auto file = files.open_output(folder / "f");
+        REQUIRE(file);
+        (*file)->rename(folder / "g");
+    }
+    CHECK(!files.exists(folder / "f.part"));
+    CHECK(!files.exists(folder / "g"));
+}
+
 TEST_CASE("files: folders are made with those above them, existing ones are fine", "[files]") {
     const TemporaryFolder folder;
     DiskFiles files;

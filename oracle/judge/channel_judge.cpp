@@ -1,0 +1,145 @@
+#include "oracle/judge/channel_judge.hpp"
+
+#include <algorithm>
+#include <cmath>
+#include <cstdlib>
+
+#include "oracle/judge/units.hpp"
+
+namespace halflsb {
+namespace {
+
+constexpr std::size_t look_every_samples = 4096;
+
+const Rule* find_latency_rule(const Case& the_case) {
+    const auto found = std::find_if(the_case.rules.begin(), the_case.rules.end(),
+                                    [](const Rule& rule) { return std::holds_alternative<LatencyRule>(rule.kind); });
+    return found == the_case.rules.end() ? nullptr : &*found;
+}
+
+bool has_response_rule(const Case& the_case) {
+    return std::any_of(the_case.rules.begin(), the_case.rules.end(),
+                       [](const Rule& rule) { return std::holds_alternative<ResponseRule>(rule.kind); });
+}
+
+std::string samples_text(int count) {
+    return std::to_string(count) + (count == 1 || count == -1 ? " sample" : " samples");
+}
+
+}  // namespace
+
+ChannelJudge::ChannelJudge(const Plan& plan, const Case& the_case, int channel)
+    : plan_(plan),
+      case_(the_case),
+      channel_(channel),
+      is_driven_(is_driven(the_case, channel)),
+      latency_rule_(find_latency_rule(the_case)),
+      expected_lag_(expected_lag_of(the_case)),
+      with_design_(is_driven_ && has_response_rule(the_case)),
+      reference_(plan, the_case, channel, with_design_),
+      pass_(plan, the_case, channel, expected_lag_),
+      window_(lag_window_of(the_case)),
+      lag_(window_, expected_lag_, first_lag_sample(the_case, window_)),
+      discrimination_(window_, first_lag_sample(the_case, window_)),
+      evidence_needed_(latency_evidence_ratio * latency_sigma(the_case, plan.signal) *
+                       latency_sigma(the_case, plan.signal)) {}
+
+void ChannelJudge::add(std::span<const Code> sent, std::span<const Code> response) {
+    const ReferenceBlock block = reference_.next(sent);
+    pass_.add(block, response);
+    if (!is_driven_ || latency_rule_ == nullptr) return;
+    response_values_.resize(response.size());
+    values_of(plan_.signal.output, response, response_values_);
+    lag_.add(block.declared, response_values_);
+    // The sums only grow: once there is evidence enough, more changes nothing. To look costs a stretch of sums, so
+    // small blocks do not look each time.
+    if (has_evidence_) return;
+    discrimination_.add(block.declared);
+    unlooked_samples_ += sent.size();
+    if (unlooked_samples_ < look_every_samples) return;
+    unlooked_samples_ = 0;
+    has_evidence_ = discrimination_.smallest() >= evidence_needed_;
+}
+
+bool ChannelJudge::latency_told() const {
+    return is_driven_ && latency_rule_ != nullptr && std::abs(expected_lag_) <= window_ &&
+           (has_evidence_ || discrimination_.smallest() >= evidence_needed_);
+}
+
+bool ChannelJudge::begin_second_pass() {
+    if (!latency_told()) return false;
+    lags_ = lag_.value();
+    const int measured = lags_->best_lag;
+    if (!std::isfinite(lags_->residual_at(measured)) || measured == expected_lag_) return false;
+    second_.emplace(SecondPass{AlignedPass(plan_, case_, channel_, measured),
+                               ReferenceSource(plan_, case_, channel_, with_design_)});
+    return true;
+}
+
+void ChannelJudge::add_again(std::span<const Code> sent, std::span<const Code> response) {
+    second_->pass.add(second_->reference.next(sent), response);
+}
+
+ChannelJudge::Latency ChannelJudge::latency_found() const {
+    if (!lags_) return Latency::not_told;
+    const int measured = lags_->best_lag;
+    // One NaN or infinity makes every lag equally bad: none of them is right.
+    if (!std::isfinite(lags_->residual_at(measured))) return Latency::not_finite;
+    if (measured == expected_lag_) return Latency::as_expected;
+    const bool is_clear = lags_->residual_at(measured) * 100.0 <= lags_->residual_at(expected_lag_);
+    const bool meets_limits = second_->pass.has_error_rules() && second_->pass.error_rules_pass();
+    return is_clear || meets_limits ? Latency::other : Latency::fits_nowhere;
+}
+
+std::optional<RuleVerdict> ChannelJudge::latency_verdict(const Rule& rule) const {
+    if (!is_driven_) return std::nullopt;
+    RuleVerdict verdict{rule, Verdict::undecided, "declared", {}, {}, std::nullopt};
+    JudgedFigure figure{
+        "latency", std::nullopt, static_cast<double>(expected_lag_), std::nullopt, "samples", false, true, {}};
+    switch (latency_found()) {
+        case Latency::not_told:
+            if (std::get<LatencyRule>(rule.kind).implicit) return std::nullopt;
+            verdict.reason = "this stimulus cannot tell the latency";
+            break;
+        case Latency::not_finite:
+            verdict.reason = "the response holds a value that is not a finite number, so it fits at no lag";
+            break;
+        case Latency::as_expected:
+            verdict.verdict = Verdict::pass;
+            figure.value = lags_->best_lag;
+            break;
+        case Latency::other:
+            verdict.verdict = Verdict::fail;
+            verdict.reason = "the response is " + samples_text(lags_->best_lag) + " behind the reference" +
+                             (std::abs(lags_->best_lag) == lags_->window ? ", or more: the window ends there" : "");
+            figure.value = lags_->best_lag;
+            figure.passed = false;
+            break;
+        case Latency::fits_nowhere:
+            verdict.reason = "the response fits at no lag of -" + std::to_string(lags_->window) + " to " +
+                             std::to_string(lags_->window) + " samples";
+            break;
+    }
+    verdict.figures.push_back(std::move(figure));
+    return verdict;
+}
+
+std::optional<RuleVerdict> ChannelJudge::verdict(const Rule& rule) const {
+    std::optional<RuleVerdict> verdict;
+    if (std::holds_alternative<LatencyRule>(rule.kind)) {
+        if (&rule == latency_rule_) verdict = latency_verdict(rule);
+    } else if (latency_found() == Latency::other) {
+        // One fault, one failure: the latency has failed, the rest is judged where the response lies.
+        verdict = second_->pass.verdict(rule);
+        if (verdict) {
+            const std::string note = "judged at the measured lag of " + samples_text(lags_->best_lag);
+            verdict->reason = verdict->reason.empty() ? note : note + "; " + verdict->reason;
+        }
+    } else {
+        verdict = pass_.verdict(rule);
+    }
+    if (verdict) verdict->channel = plan_.signal.channels == 1 ? 0 : channel_;
+    return verdict;
+}
+
+}  // namespace halflsb
