@@ -20,6 +20,7 @@ struct PlanPosition {
     std::string file;
     int line = 0;
     int column = 0;
+    bool operator==(const PlanPosition&) const = default;
 };
 
 /// "plan.toml:12:3"

@@ -59,7 +59,7 @@ void refuse_contradictions(const std::vector<Band>& bands, Problems& problems) {
             const std::string shared = from_hz == to_hz ? "at " + number_text(from_hz) + " Hz"
                                                         : "from " + edges({from_hz, to_hz, 0.0, 0.0, {}});
             problems.add(bands[i].place,
-                         "this band and the one in line " + std::to_string(bands[j].place.line) +
+                         "this band and the one in " + problems.line_text(bands[j].place, bands[i].place) +
                              " contradict each other " + shared + ": at least " + number_text(min_db) +
                              " dB and at most " + number_text(max_db) + " dB",
                          "both edges belong to a band; move the bands apart, or correct a limit");

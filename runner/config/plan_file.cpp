@@ -16,17 +16,20 @@ namespace {
 
 /// A case's own rule takes the place of those for every case of the same kind; the latency of 0 that
 /// every case has without asking comes last.
-void add_common_rules(Case& the_case, const std::vector<Rule>& common) {
+void add_common_rules(Case& the_case, const std::vector<Rule>& common, bool filter_is_unknown) {
     const std::vector<Rule> own = the_case.rules;
     const auto kind_is = [](const Rule& a) { return [&a](const Rule& b) { return a.kind.index() == b.kind.index(); }; };
     for (const Rule& rule : common) {
         if (std::none_of(own.begin(), own.end(), kind_is(rule))) the_case.rules.push_back(rule);
     }
+    if (filter_is_unknown) return;
     const Rule latency{LatencyRule{0, true}, the_case.position};
     if (std::none_of(the_case.rules.begin(), the_case.rules.end(), kind_is(latency))) the_case.rules.push_back(latency);
 }
 
-Place place_of(const PlanPosition& position) { return {position.line, position.column}; }
+Place place_of(const PlanPosition& position, const Problems& problems) {
+    return problems.place_in(position.file, position.line, position.column);
+}
 
 /// A latency rule for every case is asked of the cases that can tell it and left to them by the others,
 /// as the implicit one is; when none can, it is refused.
@@ -38,14 +41,14 @@ void settle_common_latency(Plan& plan, const std::vector<Rule>& common, Problems
     for (Case& the_case : plan.cases) {
         for (Rule& rule : the_case.rules) {
             auto* latency = std::get_if<LatencyRule>(&rule.kind);
-            if (latency == nullptr || place_of(rule.position) != place_of(written->position)) continue;
+            if (latency == nullptr || rule.position != written->position) continue;
             is_asked = true;
             latency->implicit = !latency_evidence(plan, the_case).can_tell;
             is_told = is_told || !latency->implicit;
         }
     }
     if (is_asked && !is_told) {
-        problems.add(place_of(written->position), "no case of this plan can tell its latency",
+        problems.add(place_of(written->position, problems), "no case of this plan can tell its latency",
                      "add a case with noise (shape = \"noise\", level_ratio = 0.5, length_samples = 4096), or leave "
                      "the rule out");
     }
@@ -58,42 +61,42 @@ public:
           path_(path),
           options_(options),
           problems_(document.source),
-          context_{problems_, files, options.root.empty() ? folder_of(path) : options.root, std::nullopt} {}
+          context_{problems_, files, options.root.empty() ? folder_of(path) : options.root, std::nullopt, {}} {}
 
     std::variant<Plan, ReadProblems> read() {
         TableReader top(context_, tree_, "");
         const ParameterValues values = top.parameters(plan_recipe());
         // All words of the top are known before the tables below are read: the trap of a top-level key
         // under a header is told by them.
-        for (const std::string_view key : {"signal", "filter", "rule", "case"}) top.entry(key);
+        for (const std::string_view key : {"signal", "arithmetic", "filter", "rule", "case"}) top.entry(key);
         const auto signal = read_signal(context_, top);
         if (signal) context_.nyquist_hz = signal->rate_hz / 2.0;
-        auto chain = read_filters(context_, top);
-        const Signal* known_signal = signal ? &*signal : nullptr;
-        const ReadRules common = read_rules(context_, top, known_signal, path_);
-        std::vector<ReadCase> cases = read_cases(top, known_signal);
+        const auto filters = read_filters(context_, top, signal ? &*signal : nullptr);
+        const PlanFacts facts{signal ? &*signal : nullptr, filters ? &*filters : nullptr};
+        const ReadRules common = read_rules(context_, top, facts);
+        std::vector<ReadCase> cases = read_cases(top, facts);
         check_presence(top, common, cases);
         top.refuse_unknown_keys();
 
-        if (signal && chain && common.is_clean) admit(*signal, *chain, common.rules, cases);
+        if (signal && filters && common.is_clean) admit(facts, common.rules, cases);
         if (problems_.count() > 0) return problems_.sorted();
         plan_.title = *values.text(plan_recipe(), "title");
         return std::move(plan_);
     }
 
 private:
-    std::vector<ReadCase> read_cases(TableReader& top, const Signal* signal) {
+    std::vector<ReadCase> read_cases(TableReader& top, const PlanFacts& facts) {
         std::vector<ReadCase> cases;
-        std::map<std::string, int> lines;
+        std::map<std::string, Place> places;
         for (const TomlValue* table : top.tables("case")) {
-            cases.push_back(read_case(context_, *table, top, signal, path_, options_.seed));
+            cases.push_back(read_case(context_, *table, top, facts, options_.seed));
             const ReadCase& read = cases.back();
             if (!read.name_place) continue;
-            const auto [first, is_new] = lines.emplace(read.the_case.name, read.name_place->line);
+            const auto [first, is_new] = places.emplace(read.the_case.name, *read.name_place);
             if (is_new) continue;
             problems_.add(*read.name_place,
-                          "two cases are called " + quoted(read.the_case.name) + ", the other one in line " +
-                              std::to_string(first->second),
+                          "two cases are called " + quoted(read.the_case.name) + ", the other one in " +
+                              problems_.line_text(first->second, *read.name_place),
                           "give each case a name of its own; --case chooses by it");
         }
         return cases;
@@ -115,20 +118,23 @@ private:
     }
 
     /// Joins what was read, and asks the judge which rules the stimuli cannot answer.
-    void admit(const Signal& signal, FilterChain& chain, const std::vector<Rule>& common,
-               std::vector<ReadCase>& cases) {
+    void admit(const PlanFacts& facts, const std::vector<Rule>& common, std::vector<ReadCase>& cases) {
         plan_.file = path_;
-        plan_.signal = signal;
-        plan_.filter = std::move(chain);
+        plan_.signal = *facts.signal;
+        plan_.filter = facts.filters->chain;
+        plan_.filter_is_unknown = facts.filters->is_unknown;
         for (ReadCase& read : cases) {
             if (!read.is_clean) continue;
-            add_common_rules(read.the_case, common);
+            add_common_rules(read.the_case, common, plan_.filter_is_unknown);
             plan_.cases.push_back(std::move(read.the_case));
         }
+        const std::size_t before = problems_.count();
+        finish_cases(context_, plan_);
+        if (problems_.count() != before) return;
         settle_common_latency(plan_, common, problems_);
         for (const Case& the_case : plan_.cases) {
             for (const Refusal& refusal : refusals(plan_, the_case)) {
-                problems_.add(place_of(refusal.position), refusal.problem, refusal.remedy);
+                problems_.add(place_of(refusal.position, problems_), refusal.problem, refusal.remedy);
             }
         }
     }

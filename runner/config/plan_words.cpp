@@ -1,5 +1,7 @@
 #include "runner/config/plan_words.hpp"
 
+#include "oracle/filters/filter.hpp"
+#include "oracle/judge/plan.hpp"
 #include "stimuli/rounding.hpp"
 #include "stimuli/sample_format.hpp"
 
@@ -58,6 +60,30 @@ const Recipe& signal_recipe() {
              .required = true,
              .choices = format_names(),
              .help = "Format of the samples it returns."},
+            {.name = "input_justification",
+             .type = ParameterType::choice,
+             .choices = {"right", "left", "packed"},
+             .help = "Where the bits of an input word lie in bytes that have room to spare: u12 in 2, i24 in 4; "
+                     "packed is i24 in 3."},
+            {.name = "input_byte_order",
+             .type = ParameterType::choice,
+             .choices = {"little", "big"},
+             .help = "Whether the first byte of an input word on the wire is the lowest or the highest."},
+            {.name = "output_justification",
+             .type = ParameterType::choice,
+             .choices = {"right", "left", "packed"},
+             .help = "Where the bits of an output word lie in bytes that have room to spare: u12 in 2, i24 in 4; "
+                     "packed is i24 in 3."},
+            {.name = "output_byte_order",
+             .type = ParameterType::choice,
+             .choices = {"little", "big"},
+             .help = "Whether the first byte of an output word on the wire is the lowest or the highest."},
+            {.name = "channels",
+             .type = ParameterType::integer,
+             .minimum = 1,
+             .maximum = 16,
+             .default_value = 1,
+             .help = "Channels, as many out as in; the samples of one instant are adjacent."},
             {.name = "filter",
              .type = ParameterType::text,
              .unit = "characters",
@@ -71,10 +97,20 @@ const Recipe& signal_recipe() {
             {.name = "full_scale_unit",
              .type = ParameterType::real,
              .help = "What full scale of the output means in that unit; not 0. Limits ending in _unit need it."},
+            {.name = "input_unit",
+             .type = ParameterType::text,
+             .unit = "characters",
+             .maximum = 24,
+             .help = "Engineering unit of the input; that of the output when left out."},
+            {.name = "input_full_scale_unit",
+             .type = ParameterType::real,
+             .help = "What full scale of the input means in its unit; not 0. Stimuli given in the unit need it. When "
+                     "left out full_scale_unit serves, if both sides have one unit, kind of value and full scale."},
             {.name = "output_per_input",
              .type = ParameterType::real,
-             .help = "Value out per value in at gain 1; not 0. For input and output of different families (q, i, f), "
-                     "and required there."},
+             .help =
+                 "Value out per value in at gain 1; not 0. For input and output of different kinds of value (q; i and "
+                 "u; f), and required there."},
             {.name = "quantise",
              .type = ParameterType::choice,
              .choices = roundings_with_default_first(),
@@ -84,21 +120,58 @@ const Recipe& signal_recipe() {
 }
 
 const Recipe& case_recipe() {
-    static const Recipe recipe{"case",
-                               "One stimulus with its rules.",
-                               {
-                                   {.name = "name",
-                                    .type = ParameterType::text,
-                                    .unit = "characters",
-                                    .maximum = 80,
-                                    .required = true,
-                                    .help = "What --case and the report call it; each case has its own."},
-                                   {.name = "start",
-                                    .type = ParameterType::choice,
-                                    .choices = {"reset"},
-                                    .help = "State in which the filter starts."},
-                               }};
+    static const Recipe recipe{
+        "case",
+        "One stimulus with its rules.",
+        {
+            {.name = "name",
+             .type = ParameterType::text,
+             .unit = "characters",
+             .maximum = 80,
+             .required = true,
+             .help = "What --case and the report call it; each case has its own."},
+            {.name = "start",
+             .type = ParameterType::choice,
+             .choices = {name_of(Start::reset), name_of(Start::flush), name_of(Start::running)},
+             .help = "State in which the filter starts: reset as after power-up; flushed with zeros until nothing is "
+                     "left of what went before; or running, as the case before left it."},
+            {.name = "discard_samples",
+             .type = ParameterType::integer,
+             .unit = "samples",
+             .minimum = 1,
+             .maximum = 1e10,
+             .help = "With start = \"running\", and required there: so many leading samples are judged by no rule."},
+            {.name = "rate_hz",
+             .type = ParameterType::real,
+             .unit = "Hz",
+             .minimum = 1e-6,
+             .maximum = 1e9,
+             .help = "In place of that of [signal], where a setting changes the rate of the filter."},
+        }};
     return recipe;
+}
+
+const Recipe& case_stimulus_recipe() {
+    static const Recipe recipe{
+        "stimulus",
+        "What is sent. Beside the words of its shape:",
+        {{.name = "channel",
+          .type = ParameterType::integer,
+          .minimum = 1,
+          .maximum = 16,
+          .help = "The channel that is driven, counted from 1; the others get zeros. When left out all are driven."}}};
+    return recipe;
+}
+
+const std::vector<Recipe>& filter_kinds() {
+    static const std::vector<Recipe> kinds = [] {
+        std::vector<Recipe> all = filter_recipes();
+        if (find_recipe(all, unknown_kind) == nullptr)
+            all.push_back(
+                {unknown_kind, "A filter that nobody documented: only rules that need no reference hold.", {}});
+        return all;
+    }();
+    return kinds;
 }
 
 }  // namespace halflsb

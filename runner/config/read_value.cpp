@@ -3,8 +3,10 @@
 #include <cmath>
 
 #include "runner/config/bands.hpp"
+#include "runner/config/nested_stimuli.hpp"
 #include "runner/config/number_file.hpp"
 #include "runner/config/reader.hpp"
+#include "runner/config/signal_file.hpp"
 #include "runner/world/nearest.hpp"
 #include "runner/world/printable.hpp"
 #include "stimuli/number_text.hpp"
@@ -98,24 +100,25 @@ std::string range_remedy(const Parameter& parameter, std::string_view what) {
 /// A finite number within the range; `name` is what messages call it.
 std::optional<double> number_of(const Parameter& parameter, const TomlValue& value, const std::string& name,
                                 ReadContext& context) {
+    const bool is_whole = parameter.type == ParameterType::integer || parameter.type == ParameterType::integers;
+    const std::string wanted = is_whole ? "a whole number" : "a number";
     double number = 0.0;
     if (value.kind == TomlValue::Kind::integer) {
         number = static_cast<double>(value.integer);
     } else if (value.kind == TomlValue::Kind::real) {
         number = value.real;
     } else {
-        refuse_type(parameter, value, name, parameter.type == ParameterType::integer ? "a whole number" : "a number",
-                    context);
+        refuse_type(parameter, value, name, wanted, context);
         return std::nullopt;
     }
-    const std::string what = parameter.type == ParameterType::integer ? "a whole number" : "a number";
     if (!std::isfinite(number)) {
         const std::string word = std::isnan(number) ? "nan" : number > 0.0 ? "inf" : "-inf";
-        context.problems.add(value.place, name + " = " + word + " is no finite number", range_remedy(parameter, what));
+        context.problems.add(value.place, name + " = " + word + " is no finite number",
+                             range_remedy(parameter, wanted));
         return std::nullopt;
     }
-    if (parameter.type == ParameterType::integer && value.kind != TomlValue::Kind::integer) {
-        refuse_type(parameter, value, name, "a whole number", context);
+    if (is_whole && value.kind != TomlValue::Kind::integer) {
+        refuse_type(parameter, value, name, wanted, context);
         return std::nullopt;
     }
     // Of an integer the text as written: a double may not hold it.
@@ -123,12 +126,12 @@ std::optional<double> number_of(const Parameter& parameter, const TomlValue& val
         value.kind == TomlValue::Kind::integer ? std::to_string(value.integer) : number_text(number);
     if (!(number >= parameter.minimum)) {
         context.problems.add(value.place, name + " = " + shown + " is below " + number_text(parameter.minimum),
-                             range_remedy(parameter, what));
+                             range_remedy(parameter, wanted));
         return std::nullopt;
     }
     if (!(number <= parameter.maximum)) {
         context.problems.add(value.place, name + " = " + shown + " is above " + number_text(parameter.maximum),
-                             range_remedy(parameter, what));
+                             range_remedy(parameter, wanted));
         return std::nullopt;
     }
     return number;
@@ -178,7 +181,9 @@ std::optional<std::string> choice_of(const Parameter& parameter, const TomlValue
 std::optional<std::vector<double>> reals_of(const Parameter& parameter, const TomlValue& value, const std::string& name,
                                             ReadContext& context) {
     if (value.kind != TomlValue::Kind::array) {
-        refuse_type(parameter, value, name, "an array of numbers", context);
+        refuse_type(parameter, value, name,
+                    parameter.type == ParameterType::integers ? wanted_text(parameter.type) : "an array of numbers",
+                    context);
         return std::nullopt;
     }
     if (value.items.empty()) {
@@ -214,24 +219,49 @@ std::optional<std::vector<std::vector<double>>> sections_of(const Parameter& par
     return rows;
 }
 
+/// The bytes of a file that the plan names.
+std::optional<std::string_view> named_bytes(const Parameter& parameter, const TomlValue& value, const std::string& path,
+                                            ReadContext& context) {
+    auto bytes = context.read_named_file(path, largest_named_file_bytes);
+    if (bytes) return *bytes;
+    const std::string what =
+        std::string(parameter.name) + " = " + quoted(path) + ": " + printable(bytes.error().problem);
+    context.problems.add(value.place, what, printable(bytes.error().remedy));
+    return std::nullopt;
+}
+
 std::optional<std::vector<double>> file_numbers_of(const Parameter& parameter, const TomlValue& value,
                                                    ReadContext& context) {
     const auto path = text_of(parameter, value, context);
     if (!path) return std::nullopt;
-    auto bytes = context.files.read_under_root(context.root, *path, largest_named_file_bytes);
-    if (!bytes) {
-        const std::string what =
-            std::string(parameter.name) + " = " + quoted(*path) + ": " + printable(bytes.error().problem);
-        context.problems.add(value.place, what, printable(bytes.error().remedy));
-        return std::nullopt;
-    }
-    const SourceText source(context.root + "/" + *path, std::move(*bytes));
+    auto bytes = named_bytes(parameter, value, *path, context);
+    if (!bytes) return std::nullopt;
+    const SourceText source(context.root + "/" + *path, std::string(*bytes));
     auto numbers = read_number_file(source, parameter);
     if (const auto* text = std::get_if<std::string>(&numbers)) {
         context.problems.add_rendered(value.place, *text);
         return std::nullopt;
     }
     return std::get<std::vector<double>>(std::move(numbers));
+}
+
+std::optional<std::shared_ptr<const SignalFile>> signal_file_of(const Parameter& parameter, const TomlValue& value,
+                                                                ReadContext& context) {
+    const auto path = text_of(parameter, value, context);
+    if (!path) return std::nullopt;
+    const auto rate_hz = context.nyquist_hz ? std::optional(2.0 * *context.nyquist_hz) : std::nullopt;
+    std::shared_ptr<const SignalFile>& known =
+        context.signal_files[*path + '\0' + (rate_hz ? number_text(*rate_hz) : std::string())];
+    if (known != nullptr) return known;
+    auto bytes = named_bytes(parameter, value, *path, context);
+    if (!bytes) return std::nullopt;
+    auto read = read_signal_file({*path, context.root + "/" + *path, rate_hz}, std::string(*bytes));
+    if (const auto* text = std::get_if<std::string>(&read)) {
+        context.problems.add_rendered(value.place, *text);
+        return std::nullopt;
+    }
+    known = std::make_shared<const SignalFile>(std::get<SignalFile>(std::move(read)));
+    return known;
 }
 
 template <class T>
@@ -242,7 +272,8 @@ std::optional<ParameterValue> as_value(std::optional<T> value) {
 
 }  // namespace
 
-std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlEntry& entry, ReadContext& context) {
+std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlEntry& entry, ReadContext& context,
+                                         const TableReader* owner) {
     const TomlValue& value = entry.value;
     switch (parameter.type) {
         case ParameterType::integer:
@@ -255,6 +286,7 @@ std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlE
         case ParameterType::choice:
             return as_value(choice_of(parameter, value, context));
         case ParameterType::reals:
+        case ParameterType::integers:
             return as_value(reals_of(parameter, value, std::string(parameter.name), context));
         case ParameterType::sections:
             return as_value(sections_of(parameter, value, context));
@@ -266,10 +298,14 @@ std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlE
                 return std::nullopt;
             }
             return as_value(read_bands(value, context));
-        case ParameterType::integers:
         case ParameterType::signal_file:
+            return as_value(signal_file_of(parameter, value, context));
         case ParameterType::stimuli:
-            break;  // no recipe has one yet
+            if (value.kind != TomlValue::Kind::array) {
+                refuse_type(parameter, value, parameter.name, wanted_text(parameter.type), context);
+                return std::nullopt;
+            }
+            return as_value(read_nested_stimuli(parameter.name, value, context, owner));
     }
     return std::nullopt;
 }

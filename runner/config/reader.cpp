@@ -1,10 +1,22 @@
 #include "runner/config/reader.hpp"
 
 #include <algorithm>
+#include <charconv>
 
 #include "runner/world/nearest.hpp"
 
 namespace halflsb {
+
+Outcome<std::string_view> ReadContext::read_named_file(const std::string& path, std::size_t cap_bytes) {
+    const auto known =
+        std::find_if(parts.begin(), parts.end(), [&](const PlanPart& part) { return part.path == path; });
+    // One that was taken with a higher cap is asked for again, to be refused as any other.
+    if (known != parts.end() && known->bytes.size() <= cap_bytes) return std::string_view(known->bytes);
+    auto bytes = files.read_under_root(root, path, cap_bytes);
+    if (!bytes) return bytes.error();
+    parts.push_back({path, std::move(*bytes)});
+    return std::string_view(parts.back().bytes);
+}
 
 TableReader::TableReader(ReadContext& context, const TomlValue& table, std::string title, const TableReader* outer)
     : context_(context),
@@ -26,8 +38,24 @@ std::string TableReader::header_of(std::string_view key) const {
 }
 
 Place TableReader::place_of(std::string_view key) const {
-    const TomlEntry* found = table_.find(key);
-    return found == nullptr ? table_.place : found->value.place;
+    const TomlValue* table = &table_;
+    for (;;) {
+        const std::size_t dot = key.find('.');
+        std::string_view word = key.substr(0, dot);
+        std::size_t item = 0;
+        if (const std::size_t bracket = word.find('['); bracket != std::string_view::npos) {
+            std::from_chars(word.data() + bracket + 1, word.data() + word.size(), item);
+            word = word.substr(0, bracket);
+        }
+        const TomlEntry* found = table->find(word);
+        if (found == nullptr) return table->place;
+        const std::vector<TomlValue>& items = found->value.items;
+        if (item < 1 || item > items.size() || items[item - 1].kind != TomlValue::Kind::table)
+            return found->value.place;
+        table = &items[item - 1];
+        if (dot == std::string_view::npos) return table->place;
+        key = key.substr(dot + 1);
+    }
 }
 
 const TomlEntry* TableReader::entry(std::string_view key) {
@@ -35,14 +63,16 @@ const TomlEntry* TableReader::entry(std::string_view key) {
     return table_.find(key);
 }
 
-ParameterValues TableReader::parameters(const Recipe& recipe) {
+ParameterValues TableReader::parameters(const Recipe& recipe, std::string_view may_lack) {
     ParameterValues values;
+    // All known before the first is read: a list of tables may hold what belongs here.
+    for (const Parameter& parameter : recipe.parameters) entry(parameter.name);
     for (const Parameter& parameter : recipe.parameters) {
-        const TomlEntry* found = entry(parameter.name);
+        const TomlEntry* found = table_.find(parameter.name);
         if (found != nullptr) {
-            if (auto value = read_value(parameter, *found, context_))
+            if (auto value = read_value(parameter, *found, context_, this))
                 values.set(std::string(parameter.name), std::move(*value));
-        } else if (parameter.required) {
+        } else if (parameter.required && parameter.name != may_lack) {
             refuse(place(), where() + addition_ + " has no " + std::string(parameter.name),
                    "add " + std::string(parameter.name) + ": " + std::string(parameter.help));
         }
@@ -125,7 +155,8 @@ void TableReader::refuse_unknown_keys() {
 }
 
 void TableReader::refuse(const Error& error) {
-    const bool named = error.place.empty() || error.problem.find(error.place) != std::string::npos;
+    const std::string word = error.place.substr(error.place.rfind('.') + 1);
+    const bool named = word.empty() || error.problem.find(word) != std::string::npos;
     refuse(place_of(error.place), named ? error.problem : error.place + ": " + error.problem, error.remedy);
 }
 

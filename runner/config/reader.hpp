@@ -3,11 +3,15 @@
 // Problems with their places, and reading goes on.
 #pragma once
 
+#include <deque>
+#include <map>
+#include <memory>
 #include <optional>
 #include <string>
 #include <string_view>
 #include <vector>
 
+#include "oracle/judge/plan.hpp"
 #include "runner/config/problems.hpp"
 #include "runner/config/toml_tree.hpp"
 #include "runner/world/files.hpp"
@@ -20,7 +24,16 @@ struct ReadContext {
     Problems& problems;
     const Files& files;
     std::string root;                  ///< of files that the text names
-    std::optional<double> nyquist_hz;  ///< for bands, once the sample rate is known
+    std::optional<double> nyquist_hz;  ///< for bands and stimulus files, once the sample rate is known
+    std::deque<PlanPart> parts = {};   ///< what read_named_file gave so far
+    /// Stimulus files already read, by path and rate: many cases may name one.
+    std::map<std::string, std::shared_ptr<const SignalFile>> signal_files = {};
+
+    /// The bytes of a file that the text names, by its path under the root. Each is read once and kept for the
+    /// record of the run; the view holds as long as this context. Errors are those of Files::read_under_root.
+    Outcome<std::string_view> read_named_file(const std::string& path, std::size_t cap_bytes);
+    /// What outlives the reading: the file's name, line and column.
+    PlanPosition position_of(Place place) const { return {problems.file_of(place), place.line, place.column}; }
 };
 
 class TableReader {
@@ -30,7 +43,8 @@ public:
     TableReader(ReadContext& context, const TomlValue& table, std::string title, const TableReader* outer = nullptr);
 
     /// Every parameter of the recipe: those given come back, in the types that ParameterValues states.
-    ParameterValues parameters(const Recipe& recipe);
+    /// `may_lack` is a required one that may be left out here.
+    ParameterValues parameters(const Recipe& recipe, std::string_view may_lack = {});
     /// The recipe that the string under `key` names; reports and gives nullptr when there is none.
     const Recipe* chosen_recipe(std::string_view key, const std::vector<Recipe>& recipes);
     /// The table under `key`; nullptr when absent or reported. `required` reports an absent one.
@@ -42,13 +56,15 @@ public:
     /// After everything was asked for: what else stands there is unknown.
     void refuse_unknown_keys();
 
-    /// The error of a maker (make_stimulus, make_stage, make_rule), at the parameter that it blames.
+    /// The error of a maker (make_stimulus, make_stage, make_rule), at the parameter that it blames. Of what
+    /// stands in a list of tables the maker says "parts[2].level_ratio", counting from 1.
     void refuse(const Error& error);
     void refuse(Place place, std::string_view problem, std::string_view remedy);
 
     /// Nothing was reported since this reader was made, its inner tables included.
     bool is_clean() const { return context_.problems.count() == problems_before_; }
-    /// Of the value under `key`; of the table itself when it is not there.
+    /// Of the value under `key`, which may be a path as in refuse(error); of the innermost table that is there
+    /// when it is not.
     Place place_of(std::string_view key) const;
     Place place() const { return table_.place; }
     const std::string& title() const { return title_; }
@@ -67,8 +83,9 @@ private:
     std::vector<std::string_view> known_;
 };
 
-/// One value as its Parameter wants it, or nullopt after a report.
-std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlEntry& entry, ReadContext& context);
+/// One value as its Parameter wants it, or nullopt after a report. `owner` reads the table around it.
+std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlEntry& entry, ReadContext& context,
+                                         const TableReader* owner = nullptr);
 
 /// "from 1 to 65536 samples", "of at least 0 Hz", ""
 std::string range_text(const Parameter& parameter);

@@ -86,8 +86,9 @@ std::string rows(const Recipe& recipe) {
 }
 
 std::string section(std::string_view heading, const Recipe& recipe, std::string_view further_rows = {}) {
-    return std::string(heading) + "\n\n" + std::string(recipe.help) + "\n\n" + table_start() + rows(recipe) +
-           std::string(further_rows) + "\n";
+    const std::string all_rows = rows(recipe) + std::string(further_rows);
+    return std::string(heading) + "\n\n" + std::string(recipe.help) + "\n\n" +
+           (all_rows.empty() ? std::string() : table_start() + all_rows + "\n");
 }
 
 std::string catalogue(std::string_view heading, std::string_view key, const std::vector<Recipe>& recipes) {
@@ -102,15 +103,21 @@ std::string catalogue(std::string_view heading, std::string_view key, const std:
 
 std::string plan_reference() {
     return section("### The top of the file", plan_recipe()) + section("### `[signal]`", signal_recipe()) +
-           catalogue("### `[[filter]]`", "kind", filter_recipes()) +
+           section("### `[arithmetic]` and `[filter.arithmetic]`", arithmetic_recipe()) +
+           catalogue("### `[[filter]]`", "kind", filter_kinds()) +
            catalogue("### `[[rule]]` and `[[case.rule]]`", "kind", rule_recipes()) +
-           section("#### A band", band_recipe()) + section("### `[[case]]`", case_recipe()) +
-           catalogue("### `[case.stimulus]`", "shape", stimulus_recipes());
+           section("#### A band", band_recipe()) +
+           section("### `[[case]]`", case_recipe(),
+                   row(labels_word, "list of text", "", "none", labels_help) +
+                       row(settings_word, "table of whole numbers", "", "none", settings_help)) +
+           section("### `[case.stimulus]`", case_stimulus_recipe()) +
+           catalogue("#### Shapes", "shape", stimulus_recipes());
 }
 
 std::string rig_reference() {
     return section("### `[board]`", board_recipe(), row(isolated_word, "`true`", "", "required", isolated_help)) +
            section("### `[link]`", link_recipe()) + section("### `[wire]`", wire_recipe()) +
+           section("### `[run]`", run_recipe()) +
            section("### `[commands]`", commands_recipe(),
                    row(before_run_word, "list of lists of text", "", "none", before_run_help));
 }

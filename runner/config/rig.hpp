@@ -20,6 +20,8 @@ struct Rig {
     double answer_s = 0.0;  ///< the longest silence while answers are due
     double greet_s = 0.0;   ///< the longest wait for the whole greeting
 
+    int attempts = 1;  ///< how often a case whose capture was invalid may run, in all
+
     std::vector<std::vector<std::string>> before_run;  ///< argument lists, in order
     double before_run_limit_s = 0.0;                   ///< of each command
 };

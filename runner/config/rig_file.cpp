@@ -100,6 +100,15 @@ void read_wire(ReadContext& context, TableReader& top, Rig& rig) {
     rig.greet_s = values.number(wire_recipe(), "greet_s").value_or(0.0);
 }
 
+void read_run(ReadContext& context, TableReader& top, Rig& rig) {
+    const TomlValue* table = top.table("run", false);
+    if (table == nullptr) return;
+    TableReader reader(context, *table, "[run]", &top);
+    const ParameterValues values = reader.parameters(run_recipe());
+    reader.refuse_unknown_keys();
+    rig.attempts = static_cast<int>(*values.integer(run_recipe(), "attempts"));
+}
+
 /// The first word in braces that is not {image}; "" when there is none.
 std::string_view unknown_brace_word(std::string_view argument) {
     for (std::size_t open = argument.find('{'); open != std::string_view::npos; open = argument.find('{', open + 1)) {
@@ -166,12 +175,13 @@ std::variant<Rig, ReadProblems> read_rig(const std::string& path, const Files& f
     Rig rig;
     rig.file = path;
     rig.folder = folder_of(path);
-    ReadContext context{problems, files, rig.folder, std::nullopt};
+    ReadContext context{problems, files, rig.folder, std::nullopt, {}};
     TableReader top(context, document.tree, "");
-    for (const std::string_view key : {"board", "link", "wire", "commands"}) top.entry(key);
+    for (const std::string_view key : {"board", "link", "wire", "run", "commands"}) top.entry(key);
     read_board(context, top, rig);
     read_link(context, top, rig);
     read_wire(context, top, rig);
+    read_run(context, top, rig);
     read_commands(context, top, rig);
     top.refuse_unknown_keys();
     if (problems.count() > 0) return problems.sorted();

@@ -76,6 +76,20 @@ const Recipe& wire_recipe() {
     return recipe;
 }
 
+const Recipe& run_recipe() {
+    static const Recipe recipe{
+        "run",
+        "How the bench treats a case.",
+        {{.name = "attempts",
+          .type = ParameterType::integer,
+          .minimum = 1,
+          .maximum = 10,
+          .default_value = 1,
+          .help = "How often a case may be run until its capture is valid; one that failed or is undecided never runs "
+                  "again."}}};
+    return recipe;
+}
+
 const Recipe& commands_recipe() {
     static const Recipe recipe{"commands",
                                "What may run on this machine; only a rig can say so.",

@@ -10,6 +10,7 @@ namespace halflsb {
 const Recipe& board_recipe();     ///< [board]; `isolated` is beside it, no Parameter is true or false
 const Recipe& link_recipe();      ///< [link]
 const Recipe& wire_recipe();      ///< [wire]
+const Recipe& run_recipe();       ///< [run]
 const Recipe& commands_recipe();  ///< [commands]; `before_run` is beside it, no Parameter is a list of lists of text
 
 inline constexpr std::string_view isolated_word = "isolated";

@@ -17,11 +17,18 @@
 
 namespace halflsb {
 
-/// Where in a file.
+/// Where in which file. A plan may be spread over several: `source` counts them in the order in which they
+/// were opened (Problems::add_source), 0 is the file that was asked for.
 struct Place {
     int line = 1;
     int column = 1;
-    auto operator<=>(const Place&) const = default;
+    int source = 0;
+    bool operator==(const Place&) const = default;
+    std::strong_ordering operator<=>(const Place& other) const {
+        if (const auto order = source <=> other.source; order != 0) return order;
+        if (const auto order = line <=> other.line; order != 0) return order;
+        return column <=> other.column;
+    }
 };
 
 /// The offending line is cut to this many columns, around the caret.

@@ -10,18 +10,18 @@ namespace halflsb {
 
 namespace {
 
-Place place_of(const toml::source_position& position) {
-    return {std::max(1, static_cast<int>(position.line)), std::max(1, static_cast<int>(position.column))};
+Place place_of(const toml::source_position& position, int source) {
+    return {std::max(1, static_cast<int>(position.line)), std::max(1, static_cast<int>(position.column)), source};
 }
 
-TomlValue tree_of(const toml::node& node);
+TomlValue tree_of(const toml::node& node, int source);
 
-TomlValue table_of(const toml::table& table) {
+TomlValue table_of(const toml::table& table, int source) {
     TomlValue value;
     value.kind = TomlValue::Kind::table;
     value.is_inline = table.is_inline();
     for (auto&& [key, child] : table) {
-        value.entries.push_back({std::string(key.str()), place_of(key.source().begin), tree_of(child)});
+        value.entries.push_back({std::string(key.str()), place_of(key.source().begin, source), tree_of(child, source)});
     }
     // The library sorts by name; people read by line.
     std::stable_sort(value.entries.begin(), value.entries.end(),
@@ -29,15 +29,15 @@ TomlValue table_of(const toml::table& table) {
     return value;
 }
 
-TomlValue tree_of(const toml::node& node) {
+TomlValue tree_of(const toml::node& node, int source) {
     TomlValue value;
     switch (node.type()) {
         case toml::node_type::table:
-            value = table_of(*node.as_table());
+            value = table_of(*node.as_table(), source);
             break;
         case toml::node_type::array:
             value.kind = TomlValue::Kind::array;
-            for (const toml::node& item : *node.as_array()) value.items.push_back(tree_of(item));
+            for (const toml::node& item : *node.as_array()) value.items.push_back(tree_of(item, source));
             break;
         case toml::node_type::string:
             value.kind = TomlValue::Kind::text;
@@ -59,7 +59,7 @@ TomlValue tree_of(const toml::node& node) {
             value.kind = TomlValue::Kind::date;
             break;
     }
-    value.place = place_of(node.source().begin);
+    value.place = place_of(node.source().begin, source);
     return value;
 }
 
@@ -127,14 +127,14 @@ std::string kind_text(const TomlValue& value) {
     return "nothing known";
 }
 
-std::variant<TomlValue, std::string> parse_toml(const SourceText& source) {
+std::variant<TomlValue, std::string> parse_toml(const SourceText& source, int source_index) {
     if (const std::size_t deep = too_deep_key(source.bytes()); deep != std::string_view::npos) {
         return source.render(source.place_of_byte(deep), "a key of more than 64 parts", "no key here has more than 3");
     }
     try {
-        return tree_of(toml::parse(std::string_view(source.bytes())));
+        return tree_of(toml::parse(std::string_view(source.bytes())), source_index);
     } catch (const toml::parse_error& error) {
-        return syntax_message(source, place_of(error.source().begin), error.description());
+        return syntax_message(source, place_of(error.source().begin, source_index), error.description());
     } catch (const std::exception& error) {
         return source.render({1, 1}, std::string("the TOML library gave up: ") + error.what(),
                              "please report this file as a defect of halflsb");

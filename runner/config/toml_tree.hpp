@@ -41,7 +41,7 @@ struct TomlEntry {
 std::string kind_text(const TomlValue& value);
 
 /// The tree, or the one message about what is no TOML, a repeated key among it. The library stops at the
-/// first such problem, so it stands alone.
-std::variant<TomlValue, std::string> parse_toml(const SourceText& source);
+/// first such problem, so it stands alone. `source_index` becomes the source of every place.
+std::variant<TomlValue, std::string> parse_toml(const SourceText& source, int source_index = 0);
 
 }  // namespace halflsb

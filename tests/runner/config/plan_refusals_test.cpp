@@ -1,5 +1,6 @@
 // Every refusal of a plan, whole. Where the words belong to another room (a stimulus, a filter, a rule),
 // they are asked from there, and place, line, caret and remedy are held to them.
+#include "runner/config/plan_words.hpp"
 #include "stimuli/number_text.hpp"
 #include "tests/support/config_texts.hpp"
 
@@ -22,6 +23,24 @@ void refused(const std::string& from, const std::string& to, int line, const std
              const std::string& problem, const std::string& remedy) {
     const std::string text = with(good_plan, from, to);
     CHECK(plan_problems(text) == message(text, line, at, problem, remedy));
+}
+
+/// The words of a table, or the names of recipes, as a message lists them.
+std::string listed(const std::vector<std::string>& words, const std::string& last) {
+    std::string text;
+    for (std::size_t i = 0; i < words.size(); ++i)
+        text += (i == 0 ? "" : i + 1 == words.size() ? last : std::string(", ")) + words[i];
+    return text;
+}
+std::vector<std::string> words_of(const Recipe& recipe) {
+    std::vector<std::string> words;
+    for (const Parameter& parameter : recipe.parameters) words.emplace_back(parameter.name);
+    return words;
+}
+std::vector<std::string> names_of(const std::vector<Recipe>& recipes, const std::string& quotes = "") {
+    std::vector<std::string> names;
+    for (const Recipe& recipe : recipes) names.push_back(quotes + std::string(recipe.name) + quotes);
+    return names;
 }
 
 constexpr const char* fir = "kind = \"fir\"\ntaps = [0.25, 0.5, 0.25]\n";
@@ -83,21 +102,13 @@ TEST_CASE("plan: an unknown key is refused with the nearest known one", "[config
     refused("unit = \"g\"", "units = \"g\"", 7, "units", "unknown key \"units\" in [signal]", "did you mean unit?");
     refused("[[rule]]", "[[rules]]", 14, "rules", "unknown key \"rules\" in the file", "did you mean rule?");
     refused("unit = \"g\"", "colour = \"g\"", 7, "colour", "unknown key \"colour\" in [signal]",
-            "known here: rate_hz, input, output, filter, unit, full_scale_unit, output_per_input and quantise");
+            "known here: " + listed(words_of(signal_recipe()), " and "));
     // A key that could drive a terminal.
     refused("unit = \"g\"", "\"a\\u001b[2J\" = 1", 7, "\"a", "unknown key \"a\\x1b[2J\" in [signal]",
-            "known here: rate_hz, input, output, filter, unit, full_scale_unit, output_per_input and quantise");
+            "known here: " + listed(words_of(signal_recipe()), " and "));
 }
 
 TEST_CASE("plan: words of later versions are unknown in this one", "[config]") {
-    CHECK(plan_problems(good_plan + "[case.each]\n\"stimulus.level_ratio\" = [0.1]\n") ==
-          "plan.toml:33:7: unknown key \"each\" in [[case]]\n    [case.each]\n          ^\n  known here: name, start, "
-          "stimulus and rule\n");
-    CHECK(plan_problems(with(good_plan, "taps = [0.25, 0.5, 0.25]",
-                             "taps = [0.25, 0.5, 0.25]\n[filter.arithmetic]\nrounding = \"half-up\"")) ==
-          "plan.toml:13:9: unknown key \"arithmetic\" in [[filter]] of kind \"fir\"\n    [filter.arithmetic]\n         "
-          "   ^\n"
-          "  known here: kind, taps, taps_file and coefficient_fraction_bits\n");
     refused("max_lsb = 1.5", "max_lsb = \"derived\"", 16, "\"derived\"",
             "max_lsb is the string \"derived\", wanted a number", "write max_lsb = 0.5, without quotation marks");
 }
@@ -194,13 +205,11 @@ TEST_CASE("plan: a word that is not among the choices", "[config]") {
             "did you mean \"step\"?");
     refused("kind = \"fir\"", "kind = \"fri\"", 11, "\"fri\"", "kind = \"fri\" is not known", "did you mean \"fir\"?");
     refused("kind = \"fir\"", "kind = \"wavelet\"", 11, "\"wavelet\"", "kind = \"wavelet\" is not known",
-            "give \"moving-average\", \"fir\" or \"biquad-cascade\"");
-    refused("input = \"q15\"", "input = \"q7\"", 5, "\"q7\"", "input = \"q7\" is not known",
-            "give \"q15\", \"q31\", \"i16\", \"i32\" or \"f32\"");
+            "give " + listed(names_of(filter_kinds(), "\""), " or "));
     refused("input = \"q15\"", "input = \"q51\"", 5, "\"q51\"", "input = \"q51\" is not known",
             "did you mean \"q15\"?");
-    refused("name = \"tare step\"", "name = \"tare step\"\nstart = \"running\"", 30, "\"running\"",
-            "start = \"running\" is not known", "give \"reset\"");
+    refused("name = \"tare step\"", "name = \"tare step\"\nstart = \"warm\"", 30, "\"warm\"",
+            "start = \"warm\" is not known", "give \"reset\", \"flush\" or \"running\"");
 }
 
 TEST_CASE("plan: a missing key is told at its header", "[config]") {
@@ -209,15 +218,9 @@ TEST_CASE("plan: a missing key is told at its header", "[config]") {
     refused("name = \"tare step\"\n", "", 28, "[[case]]", "[[case]] has no name",
             "add name: What --case and the report call it; each case has its own.");
     refused("kind = \"fir\"\n", "", 10, "[[filter]]", "[[filter]] has no kind",
-            "add kind = one of: moving-average, fir or biquad-cascade");
-    refused(
-        "shape = \"step\"\n", "", 30, "[case.stimulus]", "[case.stimulus] has no shape", "add shape = one of: " + [] {
-            std::string words;
-            const auto& all = stimulus_recipes();
-            for (std::size_t i = 0; i < all.size(); ++i)
-                words += (i == 0 ? "" : i + 1 == all.size() ? " or " : ", ") + std::string(all[i].name);
-            return words;
-        }());
+            "add kind = one of: " + listed(names_of(filter_kinds()), " or "));
+    refused("shape = \"step\"\n", "", 30, "[case.stimulus]", "[case.stimulus] has no shape",
+            "add shape = one of: " + listed(names_of(stimulus_recipes()), " or "));
     refused("[case.stimulus]\nshape = \"step\"\nlength_samples = 256\n", "", 28, "[[case]]",
             "[[case]] has no [case.stimulus]", "add it; docs/plan.md and docs/rig.md show how");
     refused("length_samples = 256\n", "", 30, "[case.stimulus]",
@@ -263,14 +266,14 @@ TEST_CASE("plan: two cases of one name", "[config]") {
             "give each case a name of its own; --case chooses by it");
 }
 
-TEST_CASE("plan: formats of two families need to say what gain 1 is, those of one must not", "[config]") {
+TEST_CASE("plan: formats of two kinds need to say what gain 1 is, those of one must not", "[config]") {
     refused("output = \"q15\"", "output = \"i16\"", 6, "\"i16\"",
-            "q15 in and i16 out are of different families, so nothing says what gain 1 is",
+            "q15 in and i16 out are of different kinds, so nothing says what gain 1 is",
             "add output_per_input: the value of the output format that stands for the value 1 of the input format");
     CHECK(plan_of(with(good_plan, "output = \"q15\"", "output = \"i16\"\noutput_per_input = 32768"))
               .signal.output_per_input == 32768.0);
     refused("unit = \"g\"", "output_per_input = 2", 7, "2",
-            "output_per_input has no meaning with q15 in and q15 out, values of one family",
+            "output_per_input has no meaning with q15 in and q15 out, values of one kind",
             "leave it out; a gain belongs in the filter");
     CHECK(plan_problems(with(good_plan, "output = \"q15\"", "output = \"q31\"")).empty());
 }

@@ -96,3 +96,29 @@ TEST_CASE("problems: are shown in the order of their places, equal ones as they 
     CHECK(texts[2].find("third") != std::string::npos);
     CHECK(texts[3] == "fourth");
 }
+
+TEST_CASE("problems: of several files each shows its own line, in the order in which the files were opened",
+          "[config]") {
+    const SourceText plan("lab/plan.toml", "a\nb\n"), common("lab/common.toml", "c\nd\n");
+    Problems problems(plan, "plan.toml");
+    REQUIRE(problems.add_source(common, "common.toml") == 1);
+    problems.add({1, 1, 1}, "p", "r");
+    problems.add({2, 1}, "q", "r");
+    CHECK(problems.sorted().texts == std::vector<std::string>{"lab/plan.toml:2:1: q\n    b\n    ^\n  r",
+                                                              "lab/common.toml:1:1: p\n    c\n    ^\n  r"});
+    CHECK(problems.file_of({7, 1, 1}) == "common.toml");
+    CHECK(problems.file_of({7, 1}) == "plan.toml");
+    CHECK(problems.place_in("common.toml", 2, 3) == Place{2, 3, 1});
+    CHECK(problems.line_text({2, 1, 1}, {1, 1, 1}) == "line 2");
+    CHECK(problems.line_text({2, 1, 1}, {1, 1}) == "line 2 of lab/common.toml");
+}
+
+TEST_CASE("problems: what is said twice at one place is told once, but counted", "[config]") {
+    const SourceText source("f", "a\n");
+    Problems problems(source);
+    problems.add({1, 1}, "p", "r");
+    problems.add({1, 1}, "p", "r");
+    problems.add({1, 1}, "q", "r");
+    CHECK(problems.count() == 3);
+    CHECK(problems.sorted().texts.size() == 2);
+}

@@ -1,0 +1,67 @@
+// A baseline: what `halflsb accept` kept of a good run, in a folder under the plan's root, for the rule `unchanged`.
+//
+// baseline.toml says of each case how many samples there were and the SHA-256 of what was sent and of what came back;
+// the first samples that came back stand beside it as NPY (docs/run-folder.md).
+#pragma once
+
+#include <map>
+#include <memory>
+#include <optional>
+#include <string>
+#include <vector>
+
+#include "oracle/judge/plan.hpp"
+#include "runner/config/reader.hpp"
+
+namespace halflsb {
+
+/// baseline.toml as it stands in the file.
+struct Baseline {
+    struct Entry {
+        std::string name;
+        std::int64_t samples = 0;  ///< instants
+        std::string stimulus_sha256, response_sha256;
+        std::string kept;  ///< file in the baseline's folder
+        std::int64_t kept_samples = 0;
+        std::int64_t block_samples = 0;  ///< 0: no hash of a stretch
+        std::vector<std::string> block_sha256;
+    };
+    std::string accepted_utc;
+    SampleFormat output;
+    int channels = 1;
+    std::vector<Entry> cases;
+};
+
+/// Or the rendered messages.
+std::variant<Baseline, ReadProblems> read_baseline(const SourceText& source, const Files& files);
+
+/// Gives each rule `unchanged` of a plan what its baseline accepted. Reads each folder once.
+class BaselineFiles {
+public:
+    /// Problems are told at the rule.
+    explicit BaselineFiles(ReadContext& context) : context_(context) {}
+
+    /// Sets rule.accepted, or rule.missing where there is no such folder or no such case in it; a baseline of
+    /// another stimulus, format, count of channels or length, and a damaged one, are refused. Costs a pass of the
+    /// stimulus.
+    void take(const Plan& plan, const Case& the_case, Place place, UnchangedRule& rule);
+
+private:
+    /// nullptr: none there, or refused at `place`; the flag tells which.
+    struct Folder {
+        std::optional<Baseline> baseline;
+        bool is_missing = false;
+        bool is_refused = false;
+    };
+    const Folder& folder_at(const std::string& path, Place place);
+    /// What differs between the plan's case and the accepted one, or "".
+    std::string difference(const Plan& plan, const Case& the_case, const Baseline& baseline,
+                           const Baseline::Entry& entry) const;
+    std::optional<std::vector<Code>> kept_codes(const UnchangedRule& rule, const Baseline& baseline,
+                                                const Baseline::Entry& entry, Place place);
+
+    ReadContext& context_;
+    std::map<std::string, Folder> folders_;
+};
+
+}  // namespace halflsb

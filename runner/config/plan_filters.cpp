@@ -1,0 +1,166 @@
+#include "runner/config/plan_filters.hpp"
+
+#include <algorithm>
+#include <cmath>
+
+#include "oracle/arithmetic/declared.hpp"
+#include "runner/config/plan_words.hpp"
+
+namespace halflsb {
+
+namespace {
+
+/// The top of what a plan may say, so that a stage is not blamed for what a missing [signal] leaves open.
+constexpr int most_channels = 16;
+
+bool is_in_time(const Recipe& recipe, const ParameterValues& values) {
+    return std::any_of(recipe.parameters.begin(), recipe.parameters.end(), [&](const Parameter& parameter) {
+        return (parameter.unit == "Hz" || parameter.unit == "s") && values.has(parameter.name);
+    });
+}
+
+/// Half a step of the output; of f32, half the spacing of floats below full scale.
+double half_step(const SampleFormat& output) {
+    return output.has_lsb() ? lsb_value(output) / 2.0 : std::ldexp(1.0, -25);
+}
+
+/// A table of arithmetic and what it says.
+struct ArithmeticTable {
+    std::optional<TableReader> reader;
+    ParameterValues values;
+    StageArithmetic arithmetic;
+};
+
+/// `outer` is the top, or the reader of a [[filter]]. Without the table the defaults hold.
+ArithmeticTable read_arithmetic(ReadContext& context, TableReader& outer, std::string_view title,
+                                const StageArithmetic& defaults) {
+    ArithmeticTable read{std::nullopt, {}, defaults};
+    const TomlValue* table = outer.table("arithmetic", false);
+    if (table == nullptr) return read;
+    read.reader.emplace(context, *table, std::string(title), &outer);
+    read.values = read.reader->parameters(arithmetic_recipe());
+    read.reader->refuse_unknown_keys();
+    if (!read.reader->is_clean()) return read;
+    auto made = make_arithmetic(read.values, defaults);
+    if (made) {
+        read.arithmetic = *made;
+    } else {
+        read.reader->refuse(made.error());
+    }
+    return read;
+}
+
+/// At the key to blame: the stage's own, else that of its arithmetic, else that of [arithmetic].
+void refuse_stage(TableReader& reader, const Recipe& recipe, const ParameterValues& values, ArithmeticTable& own,
+                  ArithmeticTable& common, const Error& error) {
+    const bool is_of_arithmetic = find_parameter(arithmetic_recipe(), error.place) != nullptr &&
+                                  !(find_parameter(recipe, error.place) != nullptr && values.has(error.place));
+    if (is_of_arithmetic && own.reader && own.values.has(error.place)) {
+        own.reader->refuse(error);
+    } else if (is_of_arithmetic && common.reader && common.values.has(error.place)) {
+        common.reader->refuse(error);
+    } else {
+        reader.refuse(error);
+    }
+}
+
+class FilterReader {
+public:
+    FilterReader(ReadContext& context, TableReader& top, const Signal* signal)
+        : context_(context), top_(top), signal_(signal) {}
+
+    std::optional<PlanFilters> read() {
+        const std::size_t before = context_.problems.count();
+        common_.emplace(read_arithmetic(context_, top_, "[arithmetic]", {}));
+        const bool is_written = top_.entry("filter") != nullptr;
+        const std::size_t before_tables = context_.problems.count();
+        const auto tables = top_.tables("filter");
+        for (const TomlValue* table : tables) read_stage(*table, tables.size());
+        if (tables.empty() && (!is_written || context_.problems.count() == before_tables)) {
+            top_.refuse(top_.place_of("filter"), "the file has no [[filter]]",
+                        "say what the firmware computes, at least one stage");
+        }
+        if (context_.problems.count() != before) return std::nullopt;
+        return std::move(read_);
+    }
+
+private:
+    void read_stage(const TomlValue& table, std::size_t stage_count) {
+        TableReader reader(context_, table, "[[filter]]", &top_);
+        const Recipe* recipe = reader.chosen_recipe("kind", filter_kinds());
+        if (recipe == nullptr) return;
+        PlanFilters::Stage stage{std::string(recipe->name), reader.parameters(*recipe), {}, false};
+        if (recipe->name == unknown_kind) {
+            if (stage_count > 1) {
+                reader.refuse(reader.place_of("kind"), "an unknown filter beside other stages",
+                              "make it the only [[filter]]: of a chain with an unknown stage nothing is known");
+            }
+            reader.refuse_unknown_keys();
+            read_.is_unknown = true;
+            return;
+        }
+        ArithmeticTable own = read_arithmetic(context_, reader, "[filter.arithmetic]", common_->arithmetic);
+        reader.refuse_unknown_keys();
+        if (!reader.is_clean()) return;
+        stage.arithmetic = own.arithmetic;
+        stage.depends_on_rate = is_in_time(*recipe, stage.values);
+        if (signal_ == nullptr && stage.depends_on_rate) return;
+        auto made = make_stage(recipe->name, stage.values,
+                               {signal_ == nullptr ? 1.0 : signal_->rate_hz, stage.arithmetic,
+                                signal_ == nullptr ? most_channels : signal_->channels});
+        if (made) {
+            read_.chain.push_back(std::move(*made));
+            read_.stages.push_back(std::move(stage));
+        } else {
+            refuse_stage(reader, *recipe, stage.values, own, *common_, made.error());
+        }
+    }
+
+    ReadContext& context_;
+    TableReader& top_;
+    const Signal* signal_;
+    std::optional<ArithmeticTable> common_;
+    PlanFilters read_;
+};
+
+}  // namespace
+
+bool PlanFilters::depends_on_rate() const {
+    return std::any_of(stages.begin(), stages.end(), [](const Stage& stage) { return stage.depends_on_rate; });
+}
+
+const Outcome<FilterChain>& PlanFilters::at_rate(double rate_hz, int channels) const {
+    if (const auto known = chains_.find(rate_hz); known != chains_.end()) return known->second;
+    FilterChain made;
+    for (const Stage& stage : stages) {
+        auto at_rate = make_stage(stage.kind, stage.values, {rate_hz, stage.arithmetic, channels});
+        if (!at_rate) return chains_.emplace(rate_hz, at_rate.error()).first->second;
+        made.push_back(std::move(*at_rate));
+    }
+    return chains_.emplace(rate_hz, std::move(made)).first->second;
+}
+
+std::optional<std::int64_t> PlanFilters::flush_samples_at(double rate_hz, const Signal& signal) const {
+    if (const auto known = flushes_.find(rate_hz); known != flushes_.end()) return known->second;
+    std::optional<std::int64_t> most = 0;
+    const Outcome<FilterChain>& design = at_rate(rate_hz, signal.channels);
+    const double full_scale = full_scale_value(signal.input) * std::fabs(signal.output_per_input);
+    const bool is_alike =
+        std::all_of(chain.begin(), chain.end(), [](const FilterStage& s) { return s.channels.empty(); });
+    const int channels = is_alike ? 1 : signal.channels;
+    for (int channel = 1; design && most && channel <= channels; ++channel) {
+        const FilterChain own = chain_of_channel(*design, channel);
+        // The board runs the rounded coefficients, whose poles may be the slower ones.
+        for (const FilterChain& run : {own, declared_chain(own)}) {
+            const auto samples = flush_samples(run, full_scale, half_step(signal.output));
+            most = samples && most ? std::optional(std::max(*most, *samples)) : std::nullopt;
+        }
+    }
+    return flushes_.emplace(rate_hz, most).first->second;
+}
+
+std::optional<PlanFilters> read_filters(ReadContext& context, TableReader& top, const Signal* signal) {
+    return FilterReader(context, top, signal).read();
+}
+
+}  // namespace halflsb
