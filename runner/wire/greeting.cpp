@@ -27,6 +27,13 @@ std::string known_formats() {
     return text;
 }
 
+/// "0x21"
+std::string hex_byte(unsigned byte) {
+    char text[8];
+    std::snprintf(text, sizeof text, "0x%02X", byte & 0xFFU);
+    return text;
+}
+
 std::string counted(int count, const std::string& noun) {
     return std::to_string(count) + " " + noun + (count == 1 ? "" : "s");
 }
@@ -111,9 +118,16 @@ Outcome<void> GreetingReader::add_board(message::BytesView rest) {
 }
 
 Outcome<SampleFormat> GreetingReader::format(std::uint8_t number, const std::string& where) const {
-    const std::optional<SampleFormat> known = sample_format_of_wire_code(number);
-    if (known) return *known;
-    return refused(where + " format " + std::to_string(number) + " is unknown; known are " + known_formats());
+    if (const std::optional<SampleFormat> known = sample_format_of_wire_code(number)) return *known;
+    constexpr unsigned name_bits = 0x1F, layout_bits = 0xE0;
+    const auto named = std::find_if(sample_formats().begin(), sample_formats().end(), [&](const SampleFormat& format) {
+        return format.wire_number == (number & name_bits);
+    });
+    if (named == sample_formats().end())
+        return refused(where + " format " + std::to_string(number & name_bits) + " is unknown; known are " +
+                       known_formats());
+    return refused(where + " format " + hex_byte(number) + ": " + std::string(named->name) + " has no layout " +
+                   hex_byte(number & layout_bits));
 }
 
 Outcome<void> GreetingReader::check_name(const std::string& name, const std::string& where) const {

@@ -47,8 +47,11 @@ constexpr std::size_t largest_load_values = 8;
 constexpr std::size_t largest_page_content_bytes = 80;
 /// Of the bodies of SAMPLES (seq) and RESPONSE (seq, ticks), what stands before the samples.
 constexpr std::size_t samples_fixed_bytes = 2, response_fixed_bytes = 9;
-/// Content of a RESPONSE of the largest block that a greeting can name, 4 bytes a sample, with type and CRC.
-constexpr std::size_t largest_stream_content_bytes = 5 + response_fixed_bytes + std::size_t{4} * 65535;
+/// The words of one block, all channels: the largest block that a greeting can name at 4 bytes. With several channels
+/// the host asks for smaller blocks.
+constexpr std::size_t largest_words_bytes = std::size_t{4} * 65535;
+/// Content of a RESPONSE of such a block, with type and CRC.
+constexpr std::size_t largest_stream_content_bytes = 5 + response_fixed_bytes + largest_words_bytes;
 
 struct Hello {
     std::uint32_t nonce = 0;

@@ -116,7 +116,7 @@ Outcome<void> FramedSession::start(std::size_t filter_number) {
     outgoing_done_ = 0;
     filter_ = greeting_->filters[filter_number];
     filter_number_ = filter_number;
-    const int asked = std::clamp(limits_.block_samples, 1, greeting_->max_block_samples);
+    const int asked = std::clamp(limits_.block_samples, 1, most_block_samples());
     block_samples_ = asked;
     // Never smaller than for the stream before, whose last answers are still signs of life.
     largest_content_ = std::max(largest_content_, frame_bytes_to_host());
@@ -139,21 +139,51 @@ Outcome<void> FramedSession::start(std::size_t filter_number) {
         return broken_answer("the board granted a credit of " + std::to_string(started->credit_blocks) +
                              " blocks; 1 to 64 are possible");
     block_samples_ = started->block_samples;
-    const Outcome<message::Counters> before = ask_counters();
-    if (!before) return before.error();
-    counters_at_start_ = *before;
+    if (const Outcome<void> begun = begin_figures(); !begun) return begun;
 
     window_.open(started->credit_blocks);
-    sent_samples_ = received_samples_ = answers_ = 0;
+    sent_samples_ = received_samples_ = 0;
     ready_ = Received{};
     recovering_ = false;
     resends_in_a_row_ = 0;
-    figures_ = WireFigures{};
-    frames_bad_at_start_ = decoder_.frames_bad();
-    first_sent_at_.reset();
     arrivals_.start_over();
     left_at_ = clock_.now();
     return {};
+}
+
+int FramedSession::most_block_samples() const {
+    const std::size_t input = static_cast<std::size_t>(filter_.channels_in) * filter_.input.word_bytes();
+    const std::size_t output = static_cast<std::size_t>(filter_.channels_out) * filter_.output.word_bytes();
+    return std::min(greeting_->max_block_samples,
+                    static_cast<int>(message::largest_words_bytes / std::max(input, output)));
+}
+
+Outcome<void> FramedSession::begin_figures() {
+    const Outcome<message::Counters> now = ask_counters();
+    if (!now) return now.error();
+    counters_at_start_ = *now;
+    answers_ = 0;
+    figures_ = WireFigures{};
+    frames_bad_at_start_ = decoder_.frames_bad();
+    first_sent_at_.reset();
+    return {};
+}
+
+Outcome<void> FramedSession::await_answers() {
+    while (window_.in_flight() > 0) {
+        const Instant give_up = std::min(last_good_ + silence_limit(), progress_at_ + resend_after());
+        if (const Outcome<std::size_t> moved = step(give_up); !moved) return moved.error();
+        if (const Outcome<void> patient = check_patience(); !patient) return patient.error();
+    }
+    return {};
+}
+
+Outcome<void> FramedSession::settle() {
+    if (error_) return *error_;
+    if (!window_.is_open())
+        return fail(Error{ErrorKind::defect, link_.name(), "a stream was settled that is not open", ""});
+    if (const Outcome<void> answered = await_answers(); !answered) return answered;
+    return begin_figures();
 }
 
 Outcome<BoardCounters> FramedSession::counters() {
@@ -161,11 +191,7 @@ Outcome<BoardCounters> FramedSession::counters() {
     if (!window_.is_open())
         return Error{ErrorKind::defect, link_.name(), "the counters of a stream were asked without one", ""};
     // The board's buffer is sized for the stream's frames alone, so the question waits until they are answered.
-    while (window_.in_flight() > 0) {
-        const Instant give_up = std::min(last_good_ + silence_limit(), progress_at_ + resend_after());
-        if (const Outcome<std::size_t> moved = step(give_up); !moved) return moved.error();
-        if (const Outcome<void> patient = check_patience(); !patient) return patient.error();
-    }
+    if (const Outcome<void> answered = await_answers(); !answered) return answered.error();
     const Outcome<message::Counters> now = ask_counters();
     if (!now) return now.error();
     BoardCounters since;

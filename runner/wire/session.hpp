@@ -26,6 +26,7 @@ public:
     void send(std::span<const Code> samples) override;
     void send_reset() override;
     bool is_streaming(std::size_t filter_number) const override;
+    Outcome<void> settle() override;
     void send_setting(std::size_t setting_number, std::int32_t value) override;
     Outcome<Received> advance(Instant until) override;
     Outcome<BoardCounters> counters() override;
@@ -50,6 +51,10 @@ private:
     Outcome<void> discard_stale_input();
     Outcome<message::Bytes> ask(const Question& question, Patience patience);
     Outcome<message::Counters> ask_counters();
+    /// The most samples of a block whose words fit the largest frame (docs/wire.md, section 3).
+    int most_block_samples() const;
+    Outcome<void> await_answers();
+    Outcome<void> begin_figures();
     std::uint32_t next_nonce();
 
     // Everything that moves. step() gives how many bytes were read.

@@ -45,19 +45,19 @@ struct Greeting {
 
 /// What one step of the stream brought, in order; samples may be empty.
 struct Received {
-    std::int64_t first_index = 0;
+    std::int64_t first_index = 0;  ///< counted from start()
     std::vector<Code> samples;
     std::uint64_t ticks_total = 0;    ///< of these samples
     std::uint32_t ticks_largest = 0;  ///< of one sample
 };
 
-/// The board's own counters, differences since the stream was opened.
+/// The board's own counters, differences since start() or settle().
 struct BoardCounters {
     std::uint32_t frames_bad = 0, bytes_lost = 0, gaps = 0, resent = 0, blocks = 0;
 };
 
 struct WireFigures {
-    std::int64_t bytes_sent = 0, bytes_received = 0;  ///< since the stream was opened
+    std::int64_t bytes_sent = 0, bytes_received = 0;  ///< since start() or settle(), like all of these
     std::int64_t frames_bad = 0;                      ///< arrived broken at the host
     std::int64_t resends = 0;                         ///< times the host sent again
     Duration streaming{};                             ///< from the first sample sent to the last received
@@ -80,6 +80,9 @@ public:
     virtual Outcome<void> start(std::size_t filter_number) = 0;
     /// A stream on that filter is open and whole, so that a case can go on where the one before ended.
     virtual bool is_streaming(std::size_t filter_number) const = 0;
+    /// Waits until everything sent is answered, settings and resets too, and begins figures() and counters() anew:
+    /// a case that goes on in the stream of the one before has its own. Errors as of advance().
+    virtual Outcome<void> settle() = 0;
     /// How many samples send() takes now: 0 without credit, else at most a block. A sample is one instant:
     /// with several channels it has a code for each, adjacent.
     virtual std::size_t room_samples() const = 0;

@@ -1,6 +1,6 @@
 // A board by docs/wire.md, for tests of the host: written from that page alone, sharing no code with
-// runner/wire or rigs/kit, slow and plain. Its filters pass samples through or sum them up; a sum shows
-// every sample that was lost, repeated or computed twice.
+// runner/wire or rigs/kit, slow and plain. Its filters pass samples through, sum them up (a sum shows
+// every sample that was lost, repeated or computed twice) or average them, each channel by itself.
 #pragma once
 
 #include <cstdint>
@@ -11,16 +11,18 @@
 #include <vector>
 
 #include "tests/support/fake_link.hpp"
+#include "tests/support/model_words.hpp"
 
 namespace halflsb::test {
 
 class ModelBoard final : public Peer {
 public:
-    enum class Work { pass, sum };
+    /// average: the mean of the last 16 samples, or as many as setting 0 says where there is one; ties go up.
+    enum class Work { pass, sum, average };
     struct Filter {
         std::string name = "pass";
         Work work = Work::pass;
-        int injection = 0, input = 1, output = 1;  ///< numbers of the wire
+        int injection = 0, input = 1, output = 1;  ///< bytes of the wire
         int channels_in = 1, channels_out = 1, nodes = 0, tables = 0;
     };
     struct Setting {
@@ -43,11 +45,13 @@ public:
 
     // What happened.
     std::int64_t processed_samples = 0, processed_blocks = 0, resets = 0;
+    std::vector<std::pair<std::string, std::int32_t>> settings_made;  ///< by SET, in order
     std::uint32_t frames_bad = 0, gaps = 0, resent = 0;
     std::int64_t starts = 0;
 
-    /// Power off and on.
+    /// Power off and on. Settings are as they were when it was first started.
     void restart() {
+        if (!settings_at_power_up_.empty()) settings = settings_at_power_up_;
         open_ = false;
         kept_.clear();
         frame_.clear();
@@ -171,6 +175,7 @@ private:
                 return count(body, out);
             case 0x10:
             case 0x11:
+            case 0x12:
                 return stream(type, body, out);
             default:
                 return refuse(out, type, number(body, 0, 2), type < 0x10 || type > 0x1F ? 1 : 6);
@@ -229,7 +234,7 @@ private:
             block_ = number(body, 5, 2);
             expected_ = 0;
             at_ = 0;
-            sum_ = 0;
+            clear();
             expect_said_ = false;
             kept_.clear();
         }
@@ -269,15 +274,20 @@ private:
         }
         std::vector<std::uint8_t> answer;
         put(answer, seq, 2);
-        if (type == 0x11) {
+        if (type != 0x10) {
             if (number(body, 2, 8) != at_) return refuse(out, type, seq, 3);
-            sum_ = 0;
-            ++resets;
+            if (type == 0x12 && number(body, 10, 1) >= settings.size()) return refuse(out, type, seq, 4);
+            if (type == 0x12 && !set(number(body, 10, 1), static_cast<std::int32_t>(number(body, 11, 4))))
+                return refuse(out, type, seq, 5);
+            if (type == 0x11) {
+                clear();
+                ++resets;
+            }
             put(answer, at_, 8);
         } else if (!respond(body, answer)) {
             return refuse(out, type, seq, 5);
         }
-        const Bytes whole = frame(type == 0x11 ? 0x91 : 0x90, answer);
+        const Bytes whole = frame(type == 0x10 ? 0x90 : 0x91, answer);
         kept_.push_back(whole);
         if (static_cast<int>(kept_.size()) > credit_said_at_start.value_or(credit_blocks)) kept_.pop_front();
         ++expected_;
@@ -285,19 +295,34 @@ private:
         out.insert(out.end(), whole.begin(), whole.end());
     }
 
+    bool set(std::size_t number, std::int32_t value) {
+        if (value < settings[number].minimum || value > settings[number].maximum) return false;
+        if (settings_at_power_up_.empty()) settings_at_power_up_ = settings;
+        settings[number].value = value;
+        settings_made.emplace_back(settings[number].name, value);
+        return true;
+    }
+
+    void clear() {
+        sum_ = 0;
+        past_.assign(static_cast<std::size_t>(filter_.channels_out), {});
+    }
+
     bool respond(const Bytes& body, std::vector<std::uint8_t>& answer) {
-        const std::size_t in = filter_.input == 1 || filter_.input == 3 ? 2 : 4;
-        const std::size_t out = filter_.output == 1 || filter_.output == 3 ? 2 : 4;
-        const std::size_t instant = in * static_cast<std::size_t>(filter_.channels_in);
+        const ModelWords in(filter_.input), out(filter_.output);
+        const std::size_t instant = in.bytes() * static_cast<std::size_t>(filter_.channels_in);
         const std::size_t count = (body.size() - 2) / instant;
         if (count < 1 || count > block_ || (body.size() - 2) % instant != 0) return false;
+        std::vector<std::uint8_t> bytes;
+        for (const std::byte byte : body) bytes.push_back(std::to_integer<std::uint8_t>(byte));
         put(answer, 100 * count, 4);
         put(answer, 107, 3);
         for (std::size_t n = 0; n < count; ++n) {
             for (int c = 0; c < filter_.channels_out; ++c) {
-                const std::size_t from = 2 + n * instant + static_cast<std::size_t>(c % filter_.channels_in) * in;
-                sum_ += number(body, from, in);
-                put(answer, filter_.work == Work::pass ? number(body, from, in) : sum_, out);
+                const std::size_t from =
+                    2 + n * instant + static_cast<std::size_t>(c % filter_.channels_in) * in.bytes();
+                const std::int64_t value = in.read(bytes, from) - in.zero();
+                out.write(answer, out.zero() + worked(static_cast<std::size_t>(c), value));
             }
         }
         at_ += count;
@@ -306,11 +331,33 @@ private:
         return true;
     }
 
+    std::int64_t worked(std::size_t channel, std::int64_t value) {
+        switch (filter_.work) {
+            case Work::pass:
+                return value;
+            case Work::sum:
+                return sum_ += value;
+            case Work::average:
+                break;
+        }
+        const std::int64_t points = settings.empty() ? 16 : settings[0].value;
+        std::deque<std::int64_t>& past = past_[channel];
+        past.push_front(value);
+        past.resize(64, 0);
+        std::int64_t sum = 0;
+        for (std::int64_t k = 0; k < points; ++k) sum += past[static_cast<std::size_t>(k)];
+        const std::int64_t twice = 2 * sum + points;  // floor(sum / points + 1/2)
+        return twice / (2 * points) - (twice % (2 * points) < 0 ? 1 : 0);
+    }
+
     std::vector<std::uint8_t> frame_;
     bool open_ = false;
     std::optional<std::uint32_t> stream_nonce_;
     Filter filter_;
-    std::uint64_t block_ = 0, at_ = 0, sum_ = 0;
+    std::uint64_t block_ = 0, at_ = 0;
+    std::int64_t sum_ = 0;
+    std::vector<std::deque<std::int64_t>> past_;  ///< of each channel, the newest first
+    std::vector<Setting> settings_at_power_up_;
     std::uint16_t expected_ = 0;
     bool expect_said_ = false;
     std::deque<Bytes> kept_;

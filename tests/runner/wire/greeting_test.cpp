@@ -105,7 +105,10 @@ TEST_CASE("greeting: an answer to an earlier question is not taken", "[wire]") {
 
 TEST_CASE("greeting: what cannot be used is refused with its reason", "[wire]") {
     Bench bench;
-    std::string problem;
+    std::string known, problem;
+    for (const SampleFormat& format : sample_formats())
+        known += (known.empty() ? "" : ", ") + std::to_string(format.wire_number) + " " + std::string(format.name);
+    REQUIRE(known.starts_with("1 q15, 2 q31, 3 i16, 4 i32, 5 f32"));
     SECTION("protocol") {
         bench.board.protocol = 2;
         const Error error = refused_greeting(bench);
@@ -159,8 +162,20 @@ TEST_CASE("greeting: what cannot be used is refused with its reason", "[wire]") 
         problem = "two filters are named \"pass\"";
     }
     SECTION("format") {
-        bench.board.filters[1].output = 9;
-        problem = "filter 1 (\"sum\"): output format 9 is unknown; known are 1 q15, 2 q31, 3 i16, 4 i32, 5 f32";
+        bench.board.filters[1].output = 31;
+        problem = "filter 1 (\"sum\"): output format 31 is unknown; known are " + known;
+    }
+    SECTION("format number 0, whatever the layout") {
+        bench.board.filters[0].input = 0x80;
+        problem = "filter 0 (\"pass\"): input format 0 is unknown; known are " + known;
+    }
+    SECTION("a layout that the format cannot have") {
+        bench.board.filters[0].input = 0x21;
+        problem = "filter 0 (\"pass\"): input format 0x21: q15 has no layout 0x20";
+    }
+    SECTION("a layout that nobody has") {
+        bench.board.filters[0].output = 0xE3;
+        problem = "filter 0 (\"pass\"): output format 0xE3: i16 has no layout 0xE0";
     }
     SECTION("injection") {
         bench.board.filters[0].injection = 3;
