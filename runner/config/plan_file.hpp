@@ -18,6 +18,9 @@ struct PlanOptions {
     std::string root;
     /// Takes the place of the seed of every stimulus that has one (--seed).
     std::optional<std::uint64_t> seed;
+    /// What Plan::file and every PlanPosition call the plan; "" is its path. Messages name the path in any event.
+    /// For a plan that was recorded with a run under its old name.
+    std::string shown_name = {};
 };
 
 /// A plan comes with a pull request: it can name no command, no link, and no file outside the root.

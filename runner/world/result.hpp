@@ -85,6 +85,7 @@ struct CaseResult {
     std::vector<CaseSetting> settings;
     std::vector<AttemptResult> attempts;  ///< the invalid ones before this
     std::string rerun;                    ///< the command that repeats this case alone
+    std::optional<double> rate_hz;        ///< of the case, where it is not the signal's
 };
 
 struct Counts {
@@ -108,6 +109,9 @@ struct RunResult {
     std::optional<Error> ended_by;
     std::string folder;
     double elapsed_s = 0.0;
+    std::vector<PlanPart> plan_parts;  ///< files that the plan was read from, as in Plan
+    std::string root;                  ///< of --root; "" is the plan's own folder
+    int attempts_allowed = 0;          ///< at one case, by the rig; 0 where that is not known
 
     Counts counts() const;
     /// Some case could tell its latency.
