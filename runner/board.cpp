@@ -2,6 +2,8 @@
 
 #include <spdlog/spdlog.h>
 
+#include <algorithm>
+
 #include "runner/link/serial.hpp"
 #include "runner/wire/framed_wire.hpp"
 #include "runner/world/command.hpp"
@@ -11,12 +13,22 @@ namespace {
 
 /// A board that is only asked whether flashing can be skipped need not answer: it may be blank.
 constexpr double probe_s = 1.0;
+/// Of tidying up: a greeting, then START, its counters, a setting and the counters once more.
+constexpr double brief_greeting_s = 0.4, brief_answer_s = 0.15, brief_resend_s = 0.05;
 
 std::string filter_names(const Greeting& greeting) {
     std::string names;
     for (const BoardFilter& filter : greeting.filters) names += (names.empty() ? "\"" : ", \"") + filter.name + "\"";
     return names.empty() ? "none" : names;
 }
+
+/// The same settings, whatever their values are now.
+bool same_settings(const Greeting& a, const Greeting& b) {
+    return std::equal(a.settings.begin(), a.settings.end(), b.settings.begin(), b.settings.end(),
+                      [](const BoardSetting& x, const BoardSetting& y) { return x.name == y.name; });
+}
+
+std::string channels_text(int in, int out) { return std::to_string(in) + " in, " + std::to_string(out) + " out"; }
 
 WireLimits limits_of(const Rig& rig, double greet_s) {
     WireLimits limits;
@@ -71,19 +83,16 @@ Outcome<std::size_t> agreeing_filter(const Greeting& greeting, const Signal& sig
         }
     }
     const BoardFilter& filter = greeting.filters[number];
-    const auto differs = [&](const std::string& what, std::string_view board, std::string_view plan) {
+    const auto differs = [&](const std::string& what, const std::string& board, const std::string& plan) {
         return refuse(
-            "filter \"" + filter.name + "\" has " + what + " " + std::string(board) + ", the plan says " +
-                std::string(plan),
+            "filter \"" + filter.name + "\" has " + what + " " + board + ", the plan says " + plan,
             "the plan's [signal] states facts of the firmware: correct it, or flash the firmware it is about");
     };
-    if (!(filter.input == signal.input)) return differs("input", filter.input.name, signal.input.name);
-    if (!(filter.output == signal.output)) return differs("output", filter.output.name, signal.output.name);
-    if (filter.channels_in != 1 || filter.channels_out != 1) {
-        return differs("channels",
-                       std::to_string(filter.channels_in) + " in, " + std::to_string(filter.channels_out) + " out",
-                       "1 in, 1 out");
-    }
+    if (!(filter.input == signal.input)) return differs("input", text_of(filter.input), text_of(signal.input));
+    if (!(filter.output == signal.output)) return differs("output", text_of(filter.output), text_of(signal.output));
+    if (filter.channels_in != signal.channels || filter.channels_out != signal.channels)
+        return differs("channels", channels_text(filter.channels_in, filter.channels_out),
+                       channels_text(signal.channels, signal.channels));
     return number;
 }
 
@@ -128,18 +137,34 @@ Outcome<Board> open_board(const Rig& rig, const Signal& signal, const std::optio
     return board;
 }
 
-Outcome<void> greet_again(Board& board, const Rig& rig, const Clock& clock) {
-    board.wire = make_framed_wire(*board.link, clock, limits_of(rig, rig.greet_s));
+namespace {
+
+Outcome<void> greet_over_the_same_link(Board& board, const WireLimits& limits, const Clock& clock) {
+    board.wire = make_framed_wire(*board.link, clock, limits);
     auto greeting = board.wire->greet();
     if (!greeting) return greeting.error();
     const std::string& name = board.greeting.filters[board.filter_number].name;
     if (greeting->build_id != board.greeting.build_id || greeting->serial != board.greeting.serial ||
-        board.filter_number >= greeting->filters.size() || greeting->filters[board.filter_number].name != name) {
+        board.filter_number >= greeting->filters.size() || greeting->filters[board.filter_number].name != name ||
+        !same_settings(*greeting, board.greeting)) {
         return Error{ErrorKind::bench, board.link->name(), "another board or firmware answers than at the start",
                      "what was reconnected or flashed meanwhile?"};
     }
     board.greeting = std::move(*greeting);
     return {};
+}
+
+}  // namespace
+
+Outcome<void> greet_again(Board& board, const Rig& rig, const Clock& clock) {
+    return greet_over_the_same_link(board, limits_of(rig, rig.greet_s), clock);
+}
+
+Outcome<void> greet_briefly(Board& board, const Rig& rig, const Clock& clock) {
+    WireLimits limits = limits_of(rig, brief_greeting_s);
+    limits.answer = seconds(brief_answer_s);
+    limits.resend = seconds(brief_resend_s);
+    return greet_over_the_same_link(board, limits, clock);
 }
 
 BoardFacts facts_of(const Board& board, const Rig& rig) {
@@ -153,6 +178,7 @@ BoardFacts facts_of(const Board& board, const Rig& rig) {
     facts.injection = name_of(filter.injection);
     facts.block_samples = std::min(board.greeting.max_block_samples, rig.block_samples);
     facts.credit_blocks = board.greeting.credit_blocks;
+    facts.channels = filter.channels_out;
     facts.tick_hz = board.greeting.tick_hz;
     return facts;
 }

@@ -38,6 +38,12 @@ public:
         live_.update({place, names_.size(), names_[place - 1], samples_done, samples_total,
                       to_seconds(desk_.clock.now() - case_started_)});
     }
+    void retrying(const RunResult& run, int attempt, const Error& reason) override {
+        err(wrapped(error_style_,
+                    "case \"" + names_[run.cases.size()] + "\": attempt " + std::to_string(attempt) +
+                        " gave no whole capture, it runs again: " + reason.problem,
+                    0));
+    }
     void finished(const RunResult& run) override {
         case_started_ = desk_.clock.now();
         out(case_text(run, run.cases.size() - 1, style_));

@@ -3,9 +3,11 @@
 #include <spdlog/spdlog.h>
 
 #include <algorithm>
+#include <functional>
 
 #include "oracle/judge/case_judge.hpp"
 #include "runner/world/interrupt.hpp"
+#include "runner/world/sha256.hpp"
 
 namespace halflsb {
 namespace {
@@ -13,39 +15,108 @@ namespace {
 /// How long one step of the stream may wait before progress is shown again.
 constexpr double step_s = 0.1;
 
-/// Queues blocks as far as credit reaches, so that the line has work while we judge.
-void send_ahead(const CaseStage& stage, std::int64_t& sent, std::vector<Code>& codes) {
-    const std::int64_t total = stage.the_case.stimulus->length_samples();
-    while (sent < total) {
-        const auto room = static_cast<std::int64_t>(stage.wire.room_samples());
-        if (room == 0) return;
-        codes.resize(static_cast<std::size_t>(std::min(room, total - sent)));
-        fill_codes(*stage.the_case.stimulus, stage.plan.signal.input, stage.plan.signal.quantise, sent, codes);
-        stage.wire.send(codes);
-        sent += static_cast<std::int64_t>(codes.size());
+/// What travels in one go, and what becomes of the answer. Codes of all channels are adjacent.
+struct Passage {
+    std::int64_t samples = 0;
+    std::function<Outcome<void>(std::int64_t first_index, std::span<Code>)> fill;
+    std::function<Outcome<void>(const Received&)> keep;  ///< before anything else waits
+    std::function<void(std::span<const Code>)> look;     ///< once the line has work again
+};
+
+/// A case on its way: the facts grow with every step.
+class Streaming {
+public:
+    Streaming(const CaseStage& stage, StreamFacts& facts)
+        : stage_(stage), facts_(facts), channels_(static_cast<std::size_t>(stage.plan.signal.channels)) {}
+
+    /// Opens a stream or goes on in the open one, with the settings of the case.
+    Outcome<void> begin() {
+        Wire& wire = stage_.wire;
+        const bool goes_on = stage_.the_case.start != Start::reset && wire.is_streaming(stage_.filter_number);
+        if (!goes_on) {
+            if (auto started = wire.start(stage_.filter_number); !started) return started;
+        }
+        const auto changes = stage_.settings.changes_for(stage_.the_case);
+        if (!changes.empty()) return stage_.settings.make(changes, wire, stage_.clock);
+        return goes_on ? wire.settle() : Outcome<void>();
     }
+
+    /// Until the answer to the last sample is there.
+    Outcome<void> pass(const Passage& passage) {
+        std::int64_t sent = 0, received = 0;
+        const std::int64_t done_before = facts_.samples_received;
+        while (received < passage.samples) {
+            if (auto queued = send_ahead(passage, sent); !queued) return queued;
+            auto step = stage_.wire.advance(stage_.clock.now() + seconds(step_s));
+            if (!step) return step.error();
+            if (!step->samples.empty()) {
+                if (auto kept = passage.keep(*step); !kept) return kept;
+                received += static_cast<std::int64_t>(step->samples.size() / channels_);
+                facts_.samples_received = done_before + received;
+                if (auto queued = send_ahead(passage, sent); !queued) return queued;
+                passage.look(step->samples);
+            }
+            stage_.observer.progress(stage_.place, facts_.samples_received, sent_samples(stage_.the_case));
+        }
+        return {};
+    }
+
+private:
+    /// Queues blocks as far as credit reaches, so that the line has work while we judge.
+    Outcome<void> send_ahead(const Passage& passage, std::int64_t& sent) {
+        while (sent < passage.samples) {
+            const auto room = static_cast<std::int64_t>(stage_.wire.room_samples());
+            if (room == 0) break;
+            const std::int64_t count = std::min(room, passage.samples - sent);
+            codes_.resize(static_cast<std::size_t>(count) * channels_);
+            if (auto filled = passage.fill(sent, codes_); !filled) return filled;
+            stage_.wire.send(codes_);
+            sent += count;
+            facts_.samples_sent += count;
+        }
+        return {};
+    }
+
+    const CaseStage& stage_;
+    StreamFacts& facts_;
+    std::size_t channels_;
+    std::vector<Code> codes_;
+};
+
+/// Its answers are awaited before the stimulus begins, so that no tick of theirs counts for it.
+Passage flush_of(const CaseStage& stage) {
+    const Code silence = zero_code(stage.plan.signal.input);
+    return {stage.the_case.start == Start::flush ? stage.the_case.start_samples : 0,
+            [silence](std::int64_t, std::span<Code> codes) -> Outcome<void> {
+                std::fill(codes.begin(), codes.end(), silence);
+                return {};
+            },
+            [](const Received&) { return Outcome<void>(); }, [](std::span<const Code>) {}};
 }
 
 /// Streams the whole case. An Error of kind bench leaves what came until then recorded and judged by
 /// nobody.
-Outcome<void> stream(const CaseStage& stage, CaseJudge& judge, StreamFacts& facts) {
-    const std::int64_t total = stage.the_case.stimulus->length_samples();
-    std::vector<Code> codes;
-    if (auto started = stage.wire.start(stage.filter_number); !started) return started;
-    while (facts.samples_received < total) {
-        send_ahead(stage, facts.samples_sent, codes);
-        auto received = stage.wire.advance(stage.clock.now() + seconds(step_s));
-        if (!received) return received.error();
-        if (!received->samples.empty()) {
-            if (auto kept = stage.recorder.append(received->samples); !kept) return kept;
-            facts.samples_received += static_cast<std::int64_t>(received->samples.size());
-            facts.ticks_total += received->ticks_total;
-            facts.ticks_largest = std::max(facts.ticks_largest, received->ticks_largest);
-            send_ahead(stage, facts.samples_sent, codes);
-            judge.add(received->samples);
-        }
-        stage.observer.progress(stage.place, facts.samples_received, total);
-    }
+Outcome<void> stream(const CaseStage& stage, CaseJudge& judge, CaseResult& result) {
+    Streaming streaming(stage, result.stream);
+    if (auto begun = streaming.begin(); !begun) return begun;
+    if (auto flushed = streaming.pass(flush_of(stage)); !flushed) return flushed;
+
+    const auto digest = make_code_digest();
+    const Passage stimulus{stage.the_case.stimulus->length_samples(),
+                           [&](std::int64_t first_index, std::span<Code> codes) -> Outcome<void> {
+                               fill_case_codes(stage.plan, stage.the_case, first_index, codes);
+                               digest->add(stage.plan.signal.input, codes);
+                               return stage.sent != nullptr ? stage.sent->append(codes) : Outcome<void>();
+                           },
+                           [&](const Received& received) {
+                               result.stream.ticks_total += received.ticks_total;
+                               result.stream.ticks_largest =
+                                   std::max(result.stream.ticks_largest, received.ticks_largest);
+                               return stage.recorder.append(received.samples);
+                           },
+                           [&](std::span<const Code> response) { judge.add(response); }};
+    if (auto passed = streaming.pass(stimulus); !passed) return passed;
+    result.stimulus.sha256 = digest->value();
     return {};
 }
 
@@ -65,18 +136,35 @@ void take_figures(const CaseStage& stage, StreamFacts& facts) {
     }
 }
 
-}  // namespace
-
-Outcome<CaseResult> run_case(const CaseStage& stage) {
-    const Instant started = stage.clock.now();
+/// What the case is, before anything of it happened.
+CaseResult facts_of(const CaseStage& stage) {
     CaseResult result;
     result.number = stage.number;
     result.name = stage.the_case.name;
     result.started_utc = stage.clock.utc();
+    result.stimulus.shape = stage.the_case.shape;
+    result.stimulus.values = stage.the_case.stimulus_values;
+    result.stimulus.samples = stage.the_case.stimulus->length_samples();
+    result.start = stage.the_case.start;
+    result.start_samples = stage.the_case.start_samples;
+    result.settings = stage.the_case.settings;
+    result.rate_hz = stage.the_case.rate_hz;
+    return result;
+}
+
+}  // namespace
+
+std::int64_t sent_samples(const Case& the_case) {
+    return (the_case.start == Start::flush ? the_case.start_samples : 0) + the_case.stimulus->length_samples();
+}
+
+Outcome<CaseResult> run_case(const CaseStage& stage) {
+    const Instant started = stage.clock.now();
+    CaseResult result = facts_of(stage);
     CaseJudge judge(stage.plan, stage.the_case);
 
-    const Outcome<void> streamed = stream(stage, judge, result.stream);
-    take_figures(stage, result.stream);
+    const Outcome<void> streamed = stream(stage, judge, result);
+    if (result.stream.samples_sent > 0) take_figures(stage, result.stream);
     if (!streamed && streamed.error().kind != ErrorKind::bench) return streamed.error();
     if (streamed) {
         result.grade = Grade::proven;  // the framed wire accounts for every sample

@@ -4,6 +4,7 @@
 #include <string>
 
 #include "oracle/judge/plan.hpp"
+#include "runner/board_settings.hpp"
 #include "runner/capture/recorder.hpp"
 #include "runner/run_observer.hpp"
 #include "runner/wire/wire.hpp"
@@ -20,13 +21,21 @@ struct CaseStage {
     std::size_t filter_number;  ///< of the board's greeting
     Wire& wire;
     long baud;  ///< 0 where it has no meaning
+    BoardSettings& settings;
     Recorder& recorder;
+    Recorder* sent;  ///< keeps the stimulus; nullptr where its recipe is enough
     const Clock& clock;
     RunObserver& observer;
 };
 
-/// Fills everything but names of files and hashes. A bench error makes the case invalid, with the
-/// reason, and is no Error here. Errors: interrupted (nothing is recorded), output (disk full).
+/// Zeros of a flush and the stimulus: the instants that travel.
+std::int64_t sent_samples(const Case& the_case);
+
+/// Fills everything but names of files, their hashes and earlier attempts. A bench error makes the case invalid,
+/// with the reason, and is no Error here. Errors: interrupted (nothing is recorded), output (disk full).
+///
+/// A case that starts from reset opens a new stream. One that flushes or goes on running stays in the stream that is
+/// open, if there is one: what the case before left in the filter is what it is about.
 Outcome<CaseResult> run_case(const CaseStage& stage);
 
 }  // namespace halflsb

@@ -20,6 +20,9 @@ public:
     virtual void greeted(const RunResult& run, std::optional<double> wire_s) = 0;
     /// `place` of the case among the selected ones, from 1.
     virtual void progress(std::size_t place, std::int64_t samples_done, std::int64_t samples_total) = 0;
+    /// The case after the last of run.cases gave no whole capture at this attempt (from 1), for that reason, and runs
+    /// again.
+    virtual void retrying(const RunResult& run, int attempt, const Error& reason) = 0;
     /// The last of run.cases is done and recorded.
     virtual void finished(const RunResult& run) = 0;
 };

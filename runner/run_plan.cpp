@@ -4,12 +4,12 @@
 
 #include <algorithm>
 
-#include "runner/capture/recorder.hpp"
-#include "runner/record/run_folder.hpp"
+#include "runner/record_case.hpp"
 #include "runner/report/junit_report.hpp"
 #include "runner/run_case.hpp"
 #include "runner/shell_words.hpp"
 #include "runner/wire/wire_cost.hpp"
+#include "runner/world/interrupt.hpp"
 #include "runner/world/sha256.hpp"
 
 namespace halflsb {
@@ -42,65 +42,101 @@ RunResult facts_of(const RunRequest& request, const Clock& clock) {
     run.board.rig_name = request.rig.name;
     run.board.link = request.rig.port + " at " + std::to_string(request.rig.baud) + " baud";
     run.warnings = request.warnings;
+    run.plan_parts = request.plan.parts;
+    run.root = request.root.value_or("");
+    run.attempts_allowed = request.rig.attempts;
     for (const std::size_t index : request.selected) run.cases_planned.push_back(request.plan.cases[index].name);
     return run;
 }
 
-/// Streams, records and judges one case; its files are on the disk when this returns.
-Outcome<CaseResult> run_and_record(const RunRequest& request, std::size_t index, std::size_t place, Board& board,
-                                   const RunFolder& folder, Files& files, const Clock& clock, RunObserver& observer) {
-    const Case& the_case = request.plan.cases[index];
-    const std::string file = capture_file_name(index + 1, the_case.name);
-    auto recorder = Recorder::open(files, folder.path_of(file), request.plan.signal.output);
-    if (!recorder) return recorder.error();
-    auto result = run_case({request.plan, the_case, index + 1, place, board.filter_number, *board.wire,
-                            board.link->baud(), *recorder, clock, observer});
-    if (!result || recorder->samples() == 0) {
-        recorder->discard();
-    } else {
-        if (auto kept = recorder->finish(); !kept) return kept.error();
-        result->capture_file = file;
-        auto hash = sha256_of_file(folder.path_of(file));
-        if (!hash) return hash.error();
-        result->capture_sha256 = *hash;
+/// What all cases will take on the line, with the zeros that flush; none where baud has no meaning.
+std::optional<double> wire_seconds_of(const RunRequest& request, const Board& board, int block_samples) {
+    const long baud = board.link->baud();
+    if (baud <= 0) return std::nullopt;
+    const Signal& signal = request.plan.signal;
+    const auto channels = static_cast<std::size_t>(signal.channels);
+    double total_s = 0.0;
+    for (const std::size_t index : request.selected) {
+        const WireCost cost = wire_cost(sent_samples(request.plan.cases[index]), block_samples,
+                                        channels * signal.input.word_bytes(), channels * signal.output.word_bytes());
+        total_s += wire_seconds(cost, baud);
     }
-    if (result) result->rerun = rerun_command(request, the_case.name);
-    return result;
+    return total_s;
 }
 
-/// Everything between the open folder and the last case; what ended it early.
-Outcome<void> run_cases(const RunRequest& request, RunResult& run, RunFolder& folder, Files& files, const Clock& clock,
-                        RunObserver& observer) {
-    auto board = open_board(request.rig, request.plan.signal, request.image, clock, run.firmware);
-    if (!board) return board.error();
-    run.board = facts_of(*board, request.rig);
-    std::int64_t samples = 0;
-    for (const std::size_t index : request.selected) samples += request.plan.cases[index].stimulus->length_samples();
-    std::optional<double> wire_s;
-    if (const long baud = board->link->baud(); baud > 0) {
-        const Signal& signal = request.plan.signal;
-        wire_s = wire_seconds(
-            wire_cost(samples, run.board.block_samples, signal.input.word_bytes(), signal.output.word_bytes()), baud);
+void say_start_states(const RunRequest& request) {
+    for (const std::size_t index : request.selected) {
+        const Case& the_case = request.plan.cases[index];
+        if (the_case.start == Start::flush)
+            spdlog::info("case {}: {} zeros flush the filter first", index + 1, the_case.start_samples);
+        if (the_case.start == Start::running)
+            spdlog::info("case {}: goes on running, no rule looks at its first {} samples", index + 1,
+                         the_case.start_samples);
     }
-    observer.greeted(run, wire_s);
+}
 
+/// The loop over the cases; what ended it early.
+Outcome<void> stream_cases(const RunRequest& request, const RunDesk& desk, RunResult& run, RunFolder& folder) {
     bool board_lost = false;
     for (std::size_t place = 1; place <= request.selected.size(); ++place) {
         if (board_lost) {
-            if (auto again = greet_again(*board, request.rig, clock); !again) return again;
+            if (auto again = greet_again(desk.board, desk.rig, desk.clock); !again) return again;
+            desk.settings.forget();
         }
-        auto result =
-            run_and_record(request, request.selected[place - 1], place, *board, folder, files, clock, observer);
-        if (!result) return result.error();
-        board_lost = result->verdict == CaseVerdict::invalid;
-        run.cases.push_back(std::move(*result));
+        auto recorded = run_and_record(desk, request.selected[place - 1], place);
+        if (!recorded) return recorded.error();
+        CaseResult& result = recorded->result;
+        result.rerun = rerun_command(request, result.name);
+        board_lost = !desk.board.wire->is_streaming(desk.board.filter_number);
+        run.cases.push_back(std::move(result));
         if (auto saved = folder.save(run, false, junit_report(run)); !saved) return saved;
-        observer.finished(run);
+        desk.observer.finished(run);
+        if (recorded->board_gone && place < request.selected.size()) return *recorded->board_gone;
     }
     return {};
 }
 
+/// The board must not keep what a case changed. After an interruption too, as far as a second goes.
+void put_settings_back(const RunDesk& desk, bool ended_early, RunResult& run) {
+    const auto changes = desk.settings.changes_back();
+    if (changes.empty()) return;
+    const InterruptLull lull;
+    const auto put_back = [&]() -> Outcome<void> {
+        if (ended_early || !desk.board.wire->is_streaming(desk.board.filter_number)) {
+            if (auto again = greet_briefly(desk.board, desk.rig, desk.clock); !again) return again;
+            if (auto started = desk.board.wire->start(desk.board.filter_number); !started) return started;
+        }
+        return desk.settings.make(changes, *desk.board.wire, desk.clock);
+    };
+    if (auto done = put_back(); !done) {
+        run.warnings.push_back("the board keeps settings that this run changed: " + desk.settings.text_of_changed() +
+                               "; " + done.error().problem + "; power-cycle the board before it is used");
+        desk.observer.warning(run.warnings.back());
+    }
+}
+
+/// Everything between the open folder and the last case; what ended it early.
+Outcome<void> run_on_rig(const RunRequest& request, RunResult& run, RunFolder& folder, Files& files, const Clock& clock,
+                         RunObserver& observer) {
+    auto board = open_board(request.rig, request.plan.signal, request.image, clock, run.firmware);
+    if (!board) return board.error();
+    return run_cases(request, *board, run, folder, files, clock, observer);
+}
+
 }  // namespace
+
+Outcome<void> run_cases(const RunRequest& request, Board& board, RunResult& run, RunFolder& folder, Files& files,
+                        const Clock& clock, RunObserver& observer) {
+    run.board = facts_of(board, request.rig);
+    auto settings = BoardSettings::agreed(board.greeting, request.plan, request.selected, board.link->name());
+    if (!settings) return settings.error();
+    say_start_states(request);
+    observer.greeted(run, wire_seconds_of(request, board, run.board.block_samples));
+    const RunDesk desk{request.plan, request.rig, run, folder, board, *settings, files, clock, observer};
+    const Outcome<void> ran = stream_cases(request, desk, run, folder);
+    put_settings_back(desk, !ran, run);
+    return ran;
+}
 
 RunResult run_plan(const RunRequest& request, Files& files, const Clock& clock, RunObserver& observer) {
     const Instant started = clock.now();
@@ -117,7 +153,7 @@ RunResult run_plan(const RunRequest& request, Files& files, const Clock& clock, 
     // From now on a program that dies leaves a record that says so.
     if (auto saved = folder->save(run, false, junit_report(run)); !saved && !run.ended_by) run.ended_by = saved.error();
     if (!run.ended_by) {
-        if (auto ran = run_cases(request, run, *folder, files, clock, observer); !ran) run.ended_by = ran.error();
+        if (auto ran = run_on_rig(request, run, *folder, files, clock, observer); !ran) run.ended_by = ran.error();
     }
     run.elapsed_s = to_seconds(clock.now() - started);
     if (auto saved = folder->save(run, true, junit_report(run)); !saved) {

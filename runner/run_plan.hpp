@@ -9,6 +9,7 @@
 #include "oracle/judge/plan.hpp"
 #include "runner/board.hpp"
 #include "runner/config/rig.hpp"
+#include "runner/record/run_folder.hpp"
 #include "runner/run_observer.hpp"
 #include "runner/world/clock.hpp"
 #include "runner/world/files.hpp"
@@ -33,5 +34,11 @@ struct RunRequest {
 /// Never throws away a finished case: each is on the disk before the next begins. What ended the run
 /// early, if anything, is in ended_by; an invalid case does not end it as long as the board answers.
 RunResult run_plan(const RunRequest& request, Files& files, const Clock& clock, RunObserver& observer);
+
+/// The part of it on a board that greeted and agrees with the plan's signal: settings are checked before the first
+/// sample, each case streamed, judged and recorded, and settings that cases changed put back at the end, whatever
+/// ended it. The Error is what ended it before its last case.
+Outcome<void> run_cases(const RunRequest& request, Board& board, RunResult& run, RunFolder& folder, Files& files,
+                        const Clock& clock, RunObserver& observer);
 
 }  // namespace halflsb

@@ -16,12 +16,26 @@ double power_of_two(int exponent) { return static_cast<double>(std::int64_t{1} <
 
 double codes_in_full_scale(const SampleFormat& format) { return power_of_two(format.word_bits - 1); }
 
+int container_bits_of(const SampleFormat& format) { return 8 * static_cast<int>(format.word_bytes()); }
+
+/// How far up the code lies in its container.
+int spare_bits_below(const SampleFormat& format) {
+    return format.justification == Justification::left ? container_bits_of(format) - format.word_bits : 0;
+}
+
+/// Which byte of the word, counted from its lowest, travels as number `k`.
+std::size_t significance(const SampleFormat& format, std::size_t k) {
+    return format.byte_order == ByteOrder::big ? format.word_bytes() - 1 - k : k;
+}
+
 }  // namespace
 
 const std::vector<SampleFormat>& sample_formats() {
     static const std::vector<SampleFormat> formats = {
         {"q15", FormatFamily::q, 16, 15, 1}, {"q31", FormatFamily::q, 32, 31, 2}, {"i16", FormatFamily::i, 16, 0, 3},
-        {"i32", FormatFamily::i, 32, 0, 4},  {"f32", FormatFamily::f, 32, 0, 5},
+        {"i32", FormatFamily::i, 32, 0, 4},  {"f32", FormatFamily::f, 32, 0, 5},  {"q7", FormatFamily::q, 8, 7, 6},
+        {"i8", FormatFamily::i, 8, 0, 7},    {"i24", FormatFamily::i, 24, 0, 8},  {"u8", FormatFamily::u, 8, 0, 9},
+        {"u12", FormatFamily::u, 12, 0, 10}, {"u16", FormatFamily::u, 16, 0, 11},
     };
     return formats;
 }
@@ -48,8 +62,9 @@ std::string text_of(const SampleFormat& format) {
 
 Outcome<SampleFormat> with_layout(SampleFormat format, Justification justification, ByteOrder byte_order) {
     format.justification = justification;
-    format.byte_order = byte_order;
-    const int container_bits = 8 * static_cast<int>(format.word_bytes());
+    // One byte has no order; so that each layout has one spelling, it is called little-endian.
+    format.byte_order = format.word_bytes() == 1 ? ByteOrder::little : byte_order;
+    const int container_bits = container_bits_of(format);
     const auto refuse = [&](std::string problem, std::string remedy) {
         return Error{ErrorKind::input, "justification", std::move(problem), std::move(remedy)};
     };
@@ -105,7 +120,8 @@ double highest_value(const SampleFormat& format) {
 
 double value_of(const SampleFormat& format, Code code) {
     if (!format.has_lsb()) return static_cast<double>(std::bit_cast<float>(code));
-    return static_cast<double>(code) * lsb_value(format);
+    // In doubles: the difference of two codes may not fit a code.
+    return (static_cast<double>(code) - static_cast<double>(zero_code(format))) * lsb_value(format);
 }
 
 Code code_of(const SampleFormat& format, double value, Rounding rounding) {
@@ -117,14 +133,15 @@ Code code_of(const SampleFormat& format, double value, Rounding rounding) {
     const double codes = value * power_of_two(format.fraction_bits);
     // Also clamped before rounding, so that round_to_whole sees nothing beyond 2^52.
     const double whole = round_to_whole(std::clamp(codes, -end - 1.0, end), rounding);
-    return static_cast<Code>(std::clamp(whole, -end, end - 1.0));
+    return static_cast<Code>(std::clamp(whole, -end, end - 1.0) + static_cast<double>(zero_code(format)));
 }
 
 void values_of(const SampleFormat& format, std::span<const Code> codes, std::span<double> values) {
     assert(codes.size() == values.size());
     if (format.has_lsb()) {
         const double step = lsb_value(format);
-        for (std::size_t i = 0; i < codes.size(); ++i) values[i] = static_cast<double>(codes[i]) * step;
+        const auto zero = static_cast<double>(zero_code(format));
+        for (std::size_t i = 0; i < codes.size(); ++i) values[i] = (static_cast<double>(codes[i]) - zero) * step;
     } else {
         for (std::size_t i = 0; i < codes.size(); ++i) values[i] = static_cast<double>(std::bit_cast<float>(codes[i]));
     }
@@ -133,22 +150,32 @@ void values_of(const SampleFormat& format, std::span<const Code> codes, std::spa
 void to_wire_bytes(const SampleFormat& format, std::span<const Code> codes, std::span<std::byte> bytes) {
     const std::size_t word_bytes = format.word_bytes();
     assert(bytes.size() == codes.size() * word_bytes);
+    const int spare_bits = spare_bits_below(format);
     std::size_t at = 0;
     for (const Code code : codes) {
-        const auto word = static_cast<std::uint32_t>(code);
-        for (std::size_t k = 0; k < word_bytes; ++k) bytes[at++] = static_cast<std::byte>(word >> (8 * k) & 0xffU);
+        const std::uint32_t word = static_cast<std::uint32_t>(code) << spare_bits;
+        for (std::size_t k = 0; k < word_bytes; ++k) {
+            bytes[at++] = static_cast<std::byte>(word >> (8 * significance(format, k)) & 0xffU);
+        }
     }
 }
 
 void from_wire_bytes(const SampleFormat& format, std::span<const std::byte> bytes, std::span<Code> codes) {
     const std::size_t word_bytes = format.word_bytes();
     assert(bytes.size() == codes.size() * word_bytes);
-    const int unused_bits = 32 - format.word_bits;
+    const int above_bits = 32 - container_bits_of(format);
+    const int spare_bits = spare_bits_below(format);
+    const bool is_unsigned = format.family == FormatFamily::u;
     std::size_t at = 0;
     for (Code& code : codes) {
         std::uint32_t word = 0;
-        for (std::size_t k = 0; k < word_bytes; ++k) word |= std::to_integer<std::uint32_t>(bytes[at++]) << (8 * k);
-        code = static_cast<Code>(word << unused_bits) >> unused_bits;  // the shift back extends the sign
+        for (std::size_t k = 0; k < word_bytes; ++k) {
+            word |= std::to_integer<std::uint32_t>(bytes[at++]) << (8 * significance(format, k));
+        }
+        // Up to the top of 32 bits and back, so that the sign of the container is extended.
+        word <<= above_bits;
+        const int back = above_bits + spare_bits;
+        code = is_unsigned ? static_cast<Code>(word >> back) : static_cast<Code>(word) >> back;
     }
 }
 

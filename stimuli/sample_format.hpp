@@ -58,7 +58,7 @@ std::optional<SampleFormat> sample_format(std::string_view name);
 /// "u12, left-justified, big-endian"; the defaults are not said.
 std::string text_of(const SampleFormat& format);
 /// The format in another layout; an Error's place is "justification". Left needs spare bits in the container,
-/// packed a word of whole bytes that is narrower than it.
+/// packed a word of whole bytes that is narrower than it. One byte has no order: it stays little-endian.
 Outcome<SampleFormat> with_layout(SampleFormat format, Justification justification, ByteOrder byte_order);
 /// The byte of the greeting: wire_number, justification << 5, byte order << 7 (docs/wire.md).
 std::uint8_t wire_code_of(const SampleFormat& format);
@@ -85,7 +85,7 @@ void values_of(const SampleFormat& format, std::span<const Code> codes, std::spa
 
 /// Words of word_bytes() in the format's layout, as they travel. `bytes` holds codes.size() * word_bytes().
 /// Reading drops nothing that a right-justified container holds: a u12 word of 0x1fff is the code 8191, which no
-/// u12 is, and shows as an error.
+/// u12 is, and shows as an error. Of a left-justified one it drops the spare bits below.
 void to_wire_bytes(const SampleFormat& format, std::span<const Code> codes, std::span<std::byte> bytes);
 void from_wire_bytes(const SampleFormat& format, std::span<const std::byte> bytes, std::span<Code> codes);
 

@@ -22,4 +22,11 @@ static inline int64_t round_half_up(int64_t value, unsigned bits) {
     return (value + ((int64_t)1 << (bits - 1))) >> bits;
 }
 
+/* floor(sum / points + 1/2) = floor((2 sum + points) / (2 points)); C divides toward zero, so a negative remainder
+ * takes one off. */
+static inline int64_t divide_half_up(int64_t sum, int64_t points) {
+    const int64_t dividend = 2 * sum + points, divisor = 2 * points;
+    return dividend / divisor - (dividend % divisor < 0);
+}
+
 #endif

@@ -4,13 +4,6 @@
 
 #include "rigs/filters/fixed_point.h"
 
-/* floor(sum / points + 1/2) = floor((2 sum + points) / (2 points)); C divides toward zero, so a negative remainder
- * takes one off. */
-static int64_t divide_half_up(int64_t sum, int64_t points) {
-    const int64_t dividend = 2 * sum + points, divisor = 2 * points;
-    return dividend / divisor - (dividend % divisor < 0);
-}
-
 void moving_average_q15_init(struct moving_average_q15* filter, int16_t* ring, uint16_t points) {
     filter->ring = ring;
     filter->points = points;

@@ -24,14 +24,45 @@ extern "C" {
 #define HALFLSB_CREDIT_BLOCKS 4 /* blocks in flight, 1 .. 64 */
 #endif
 #ifndef HALFLSB_WORD_BYTES
-#define HALFLSB_WORD_BYTES 4 /* widest sample, times the channels of one instant */
+#define HALFLSB_WORD_BYTES 4 /* widest sample in its container, times the channels of one instant, 1 .. 16 */
 #endif
 
 enum halflsb_injection { HALFLSB_CALL = 0, HALFLSB_BUFFER = 1, HALFLSB_CONVERTER = 2 };
-enum halflsb_format { HALFLSB_Q15 = 1, HALFLSB_Q31 = 2, HALFLSB_I16 = 3, HALFLSB_I32 = 4, HALFLSB_F32 = 5 };
 
-/* A filter of the firmware. `process` takes `count` instants from `in` and writes as many to `out`;
- * words are in the machine's own order, in and out never overlap harmfully (out may equal in). */
+/* A sample's format is a number, to which a layout may be added: HALFLSB_I24 | HALFLSB_LEFT | HALFLSB_BIG.
+ *
+ *   q7 i8 u8       1 byte
+ *   q15 i16 u16    2 bytes
+ *   u12            2 bytes, in the low 12 bits; with HALFLSB_LEFT in the high 12, zeros below
+ *   i24            4 bytes, sign-extended; with HALFLSB_LEFT in the high 24 bits, zeros below; with
+ *                  HALFLSB_PACKED 3 bytes and no padding between samples
+ *   q31 i32 f32    4 bytes
+ *
+ * u formats are offset binary: the mid-code (128, 2048, 32768) is zero. No other format takes HALFLSB_LEFT or
+ * HALFLSB_PACKED: START refuses such a filter (reason 6). */
+enum halflsb_format {
+    HALFLSB_Q15 = 1,
+    HALFLSB_Q31 = 2,
+    HALFLSB_I16 = 3,
+    HALFLSB_I32 = 4,
+    HALFLSB_F32 = 5,
+    HALFLSB_Q7 = 6,
+    HALFLSB_I8 = 7,
+    HALFLSB_I24 = 8,
+    HALFLSB_U8 = 9,
+    HALFLSB_U12 = 10,
+    HALFLSB_U16 = 11
+};
+#define HALFLSB_LEFT (1 << 5)
+#define HALFLSB_PACKED (2 << 5)
+#define HALFLSB_BIG (1 << 7) /* the most significant byte first */
+
+/* A filter of the firmware. `process` takes `count` instants from `in` and writes as many to `out`; samples of one
+ * instant are adjacent, channel 0 first. in and out never overlap harmfully (out may equal in).
+ *
+ * Words are in the machine's own order and aligned to their size, so that `in` and `out` can be read as arrays. The kit
+ * turns no byte of a format with HALFLSB_BIG, nor of a packed one: such words lie in memory as they travel, most
+ * (or, packed without HALFLSB_BIG, least) significant byte first, as a DMA would have put them there. */
 struct halflsb_filter {
     const char* name; /* to 24 bytes */
     uint8_t injection, input, output, channels_in, channels_out, tables;

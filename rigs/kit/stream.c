@@ -23,7 +23,7 @@ static struct {
     uint32_t nonce;
     uint16_t block_samples, expected, ahead;
     uint16_t in, out; /* bytes of all channels at one instant */
-    uint8_t in_word, out_word;
+    uint8_t in_alignment;
     uint8_t credit, in_gap;
 } stream;
 
@@ -38,7 +38,7 @@ enum halflsb_reason halflsb_stream_open(const struct halflsb_board* board, const
     const uint32_t nonce = halflsb_get32(start->head + 1);
     const uint16_t asked = halflsb_get16(start->head + 6);
     const struct halflsb_filter* filter;
-    uint8_t in_word, out_word;
+    uint8_t in_word;
     uint32_t in, out, wider, most, credit;
     if (stream.filter != NULL && nonce == stream.nonce) return HALFLSB_ACCEPTED;
     if (start->head[5] >= board->filter_count) return HALFLSB_NO_SUCH_THING;
@@ -46,9 +46,8 @@ enum halflsb_reason halflsb_stream_open(const struct halflsb_board* board, const
     if (halflsb_get32(start->head + 8) != 0) return HALFLSB_NOT_SUPPORTED;
     filter = &board->filters[start->head[5]];
     in_word = halflsb_word_bytes(filter->input);
-    out_word = halflsb_word_bytes(filter->output);
     in = (uint32_t)in_word * filter->channels_in;
-    out = (uint32_t)out_word * filter->channels_out;
+    out = (uint32_t)halflsb_word_bytes(filter->output) * filter->channels_out;
     wider = in > out ? in : out;
     if (in == 0 || out == 0 || wider > HALFLSB_BLOCK_BYTES) return HALFLSB_NOT_SUPPORTED;
 
@@ -58,8 +57,7 @@ enum halflsb_reason halflsb_stream_open(const struct halflsb_board* board, const
     if (credit > HALFLSB_MOST_CREDIT) credit = HALFLSB_MOST_CREDIT;
     if (board->credit_blocks != 0 && credit > board->credit_blocks) credit = board->credit_blocks;
     stream.credit = halflsb_answers_open(stream.block_samples * wider, (uint8_t)credit);
-    stream.in_word = in_word;
-    stream.out_word = out_word;
+    stream.in_alignment = halflsb_word_alignment(in_word);
     stream.in = (uint16_t)in;
     stream.out = (uint16_t)out;
     stream.filter = filter;
@@ -78,18 +76,18 @@ const struct halflsb_stream_counters* halflsb_stream_counters(void) { return &co
 /* Answers in place: the input stands so far behind the output that no sample is overwritten before its turn. */
 static uint32_t process(const struct halflsb_board* board, const struct halflsb_frame* frame, uint8_t* answer) {
     const uint32_t bytes = frame->bytes - SAMPLES, count = bytes / stream.in, out_bytes = count * stream.out;
-    /* Rounded up to whole words: a word is 2 or 4 bytes. */
-    const uint32_t behind = out_bytes > bytes ? (out_bytes - bytes + stream.in_word - 1u) & ~(stream.in_word - 1u) : 0;
+    const uint32_t fraction = stream.in_alignment - 1u; /* of a word: 0, 1 or 3 */
+    const uint32_t behind = out_bytes > bytes ? (out_bytes - bytes + fraction) & ~fraction : 0;
     uint8_t* samples = answer + RESPONSE_SAMPLES;
     uint32_t total = 0, largest;
 
     halflsb_frame_copy(frame, SAMPLES, samples + behind);
-    halflsb_order_words(samples + behind, bytes, stream.in_word);
+    halflsb_order_words(samples + behind, bytes, stream.filter->input);
     if (board->tick_bits != 0) total = board->ticks();
     stream.filter->process(samples + behind, samples, (uint16_t)count);
     if (board->tick_bits != 0) total = board->ticks() - total;
     if (board->tick_bits < 32) total &= ((uint32_t)1 << board->tick_bits) - 1u;
-    halflsb_order_words(samples, out_bytes, stream.out_word);
+    halflsb_order_words(samples, out_bytes, stream.filter->output);
 
     largest = total / count + (total % count != 0);
     if (largest > TICKS_LARGEST_CAP) largest = TICKS_LARGEST_CAP;

@@ -76,6 +76,25 @@ private:
     Wide sum_ = 0;
 };
 
+class OffsetAverageVariant : public CodeFilter {
+public:
+    OffsetAverageVariant(int points, int word_bits, const Deviation& deviation)
+        : inner_(points, word_bits, deviation), middle_(std::int32_t{1} << (word_bits - 1)), deviation_(deviation) {}
+
+    void reset() override { inner_.reset(); }
+    void reset_half() override { inner_.reset_half(); }
+    std::int32_t step(std::int32_t x) override {
+        const std::int32_t code = x & (2 * middle_ - 1);
+        const std::int32_t y = inner_.step(deviation_.offset_kept ? code : code - middle_);
+        return deviation_.offset_missing ? y : y + middle_;
+    }
+
+private:
+    AverageVariant inner_;
+    std::int32_t middle_;
+    Deviation deviation_;
+};
+
 /// The sum of products that a FIR and a biquad share.
 class ProductSum {
 public:
@@ -162,11 +181,15 @@ private:
 
 bool Deviation::any() const {
     return rounding != DroppedBits::half_up || output_wraps || feedback_unsaturated || products_truncated ||
-           narrow_sum || shift_more != 0 || points_less != 0;
+           narrow_sum || shift_more != 0 || points_less != 0 || offset_kept || offset_missing;
 }
 
 std::unique_ptr<CodeFilter> average_variant(int points, int word_bits, const Deviation& deviation) {
     return std::make_unique<AverageVariant>(points, word_bits, deviation);
+}
+
+std::unique_ptr<CodeFilter> offset_average_variant(int points, int word_bits, const Deviation& deviation) {
+    return std::make_unique<OffsetAverageVariant>(points, word_bits, deviation);
 }
 
 std::unique_ptr<CodeFilter> fir_variant(const std::int16_t* taps, int count, const Deviation& deviation) {

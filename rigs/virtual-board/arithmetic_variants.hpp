@@ -20,11 +20,15 @@ struct Deviation {
     bool narrow_sum = false;            ///< moving average: the sum is as wide as a sample, and wraps
     int shift_more = 0;                 ///< bits dropped too many
     int points_less = 0;                ///< moving average: ring shorter, divisor unchanged
+    bool offset_kept = false;           ///< offset binary: the mid-code is not subtracted
+    bool offset_missing = false;        ///< offset binary: the mid-code is not added to the output
 
     bool any() const;
 };
 
 std::unique_ptr<CodeFilter> average_variant(int points, int word_bits, const Deviation& deviation);
+/// Codes in offset binary; bits above word_bits are not looked at.
+std::unique_ptr<CodeFilter> offset_average_variant(int points, int word_bits, const Deviation& deviation);
 /// `taps` must outlive the filter, and may change between samples.
 std::unique_ptr<CodeFilter> fir_variant(const std::int16_t* taps, int count, const Deviation& deviation);
 std::unique_ptr<CodeFilter> biquad_variant(const biquad_q15_coefficients* sections, int count,

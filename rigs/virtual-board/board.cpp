@@ -19,6 +19,7 @@ struct State {
     std::vector<halflsb_filter> offered;
     halflsb_setting average{};
     AverageSetting* average_setting = nullptr;
+    std::int32_t unread_points = 0;
     halflsb_board board{};
     std::vector<std::uint8_t> build_id, written;
     std::string serial;
@@ -44,8 +45,9 @@ struct Row {
     }
     static halflsb_filter offer() {
         const FilterParts& parts = state.filters[number]->parts();
-        const auto format = static_cast<std::uint8_t>(parts.format);
-        return {parts.name.c_str(), HALFLSB_CALL, format, format, 1, 1, parts.tables, reset, process, load};
+        const auto channels = static_cast<std::uint8_t>(parts.channel_count());
+        return {parts.name.c_str(), HALFLSB_CALL, parts.format, parts.format, channels,
+                channels,           parts.tables, reset,        process,      load};
     }
 };
 
@@ -102,6 +104,11 @@ Board::Board(const Options& options, std::vector<FilterParts> chosen, AverageSet
     state.average_setting = &average;
     state.average = {"average-points", 1, average_points_most, &average.points,
                      [] { state.average_setting->changed(); }};
+    if (faults.settings_ignored) {
+        state.unread_points = average.points;
+        state.average.value = &state.unread_points;
+        state.average.changed = nullptr;
+    }
     state.board.build_id = state.build_id.data();
     state.board.build_id_bytes = static_cast<std::uint8_t>(state.build_id.size());
     state.board.serial = state.serial.c_str();

@@ -13,7 +13,7 @@ namespace halflsb::board {
 /// Only one can exist: the kit has one instance.
 class Board {
 public:
-    /// `chosen`: 1 to 16 filters.
+    /// `chosen`: 1 to most_filters filters.
     Board(const Options& options, std::vector<FilterParts> chosen, AverageSetting& average, const Faults& faults);
     ~Board();
     Board(const Board&) = delete;
@@ -35,6 +35,6 @@ public:
     const std::string& running_filter() const;
 };
 
-inline constexpr std::size_t most_filters = 16;
+inline constexpr std::size_t most_filters = 32;
 
 }  // namespace halflsb::board

@@ -2,7 +2,6 @@
 
 #include <algorithm>
 #include <cstring>
-#include <limits>
 #include <type_traits>
 #include <utility>
 
@@ -13,80 +12,14 @@
 #include "rigs/filters/coefficients/settle.h"
 #include "rigs/filters/coefficients/smoothing.h"
 #include "rigs/filters/fir.h"
-#include "rigs/filters/moving_average.h"
+#include "rigs/virtual-board/clean_averages.hpp"
+#include "rigs/virtual-board/clean_recursive.hpp"
 
 namespace halflsb::board {
 
 namespace {
 
 // Each filter's storage is shared by its functions, which the board keeps for as long as it runs.
-
-/// With a setting, its value is the window, and its `changed` makes the filter anew.
-FilterParts average_q15(std::string name, halflsb_format format, int points, AverageSetting* setting = nullptr) {
-    struct Storage {
-        std::vector<std::int16_t> ring = std::vector<std::int16_t>(static_cast<std::size_t>(average_points_most));
-        moving_average_q15 filter{};
-        void init(int window) { moving_average_q15_init(&filter, ring.data(), static_cast<std::uint16_t>(window)); }
-    };
-    auto s = std::make_shared<Storage>();
-    s->init(points);
-    FilterParts parts;
-    parts.name = std::move(name);
-    parts.kind = setting == nullptr ? FilterKind::average : FilterKind::adjustable_average;
-    parts.format = format;
-    parts.reset = [s] { moving_average_q15_reset(&s->filter); };
-    parts.reset_half = [s] {
-        std::fill_n(s->ring.begin(), s->filter.points / 2, std::int16_t{0});
-        s->filter.position = 0;
-        s->filter.sum = 0;
-    };
-    parts.process = [s](const void* in, void* out, std::uint16_t count) {
-        moving_average_q15_process(&s->filter, static_cast<const std::int16_t*>(in), static_cast<std::int16_t*>(out),
-                                   count);
-    };
-    if (setting != nullptr) {
-        setting->changed = [s, setting] { s->init(setting->points); };
-    } else {
-        parts.variant = [points](const Deviation& deviation) { return average_variant(points, 16, deviation); };
-    }
-    return parts;
-}
-
-FilterParts average_i32(std::string name, int points) {
-    struct Storage {
-        std::vector<std::int32_t> ring;
-        moving_average_i32 filter{};
-    };
-    auto s = std::make_shared<Storage>();
-    s->ring.resize(static_cast<std::size_t>(points));
-    moving_average_i32_init(&s->filter, s->ring.data(), static_cast<std::uint16_t>(points));
-    FilterParts parts;
-    parts.name = std::move(name);
-    parts.kind = FilterKind::average;
-    parts.format = HALFLSB_I32;
-    parts.reset = [s] { moving_average_i32_reset(&s->filter); };
-    parts.reset_half = [s] {
-        std::fill_n(s->ring.begin(), s->ring.size() / 2, 0);
-        s->filter.position = 0;
-        s->filter.sum = 0;
-    };
-    parts.process = [s](const void* in, void* out, std::uint16_t count) {
-        moving_average_i32_process(&s->filter, static_cast<const std::int32_t*>(in), static_cast<std::int32_t*>(out),
-                                   count);
-    };
-    parts.variant = [points](const Deviation& deviation) { return average_variant(points, 32, deviation); };
-    return parts;
-}
-
-template <typename Word>
-bool load_words(Word* table, std::size_t size, std::uint16_t offset, const std::int32_t* values, std::uint8_t count) {
-    if (std::size_t{offset} + count > size) return false;
-    for (int i = 0; i < count; ++i) {
-        if (values[i] < std::numeric_limits<Word>::min() || values[i] > std::numeric_limits<Word>::max()) return false;
-    }
-    std::transform(values, values + count, table + offset, [](std::int32_t v) { return static_cast<Word>(v); });
-    return true;
-}
 
 template <std::size_t count>
 FilterParts fir(std::string name, FilterKind kind, const std::int16_t (&taps)[count], const double (&design)[count],
@@ -215,11 +148,40 @@ FilterParts biquad(std::string name, const typename Width::Coefficients (&table)
     return parts;
 }
 
+std::string what_it_is(const FilterParts& filter) {
+    switch (filter.kind) {
+        case FilterKind::average:
+            return "16-point mean, exact sum, halves upward";
+        case FilterKind::adjustable_average:
+            return "mean of \"average-points\" samples, exact sum, halves upward";
+        case FilterKind::symmetric_fir:
+            return "31-tap low-pass, halves upward at the output, saturates";
+        case FilterKind::asymmetric_fir:
+            return "24-tap low-pass, halves upward at the output, saturates";
+        case FilterKind::biquad_q15:
+        case FilterKind::biquad_q31:
+            return filter.name == "mains-notch" ? "50 Hz notch, halves upward, saturates"
+                                                : "24 Hz low-pass, two sections, each halves upward and saturates";
+        case FilterKind::biquad_f32:
+            return "24 Hz low-pass, two sections, each product and sum to the nearest float";
+        case FilterKind::one_pole:
+            return filter.name == "level" ? "one-pole, 1/16, wide state, floors"
+                                          : "one-pole, 1/16, wide state, halves upward";
+        case FilterKind::dc_blocker:
+            return "DC blocker, pole at 1 - 2^-8, wide state, floors and keeps the fraction, saturates";
+        case FilterKind::comb:
+            return "1/2 x[n] + 1/4 x[n-24] + 1/4 y[n-24], halves upward, saturates";
+        case FilterKind::channels:
+            return filter.channels_alike ? "load-cell on each channel" : "load-cell on channel 1, settle on channel 2";
+    }
+    return "";
+}
+
 }  // namespace
 
 std::vector<FilterParts> all_filters(const TableFaults& faults, AverageSetting& setting) {
     std::vector<FilterParts> filters;
-    filters.push_back(average_q15("load-cell", HALFLSB_Q15, 16));
+    filters.push_back(average_of("load-cell", HALFLSB_Q15, 16));
     filters.push_back(fir("smoothing", FilterKind::symmetric_fir, smoothing_taps, smoothing_design, faults));
     filters.push_back(
         fir("quick-smoothing", FilterKind::asymmetric_fir, quick_smoothing_taps, quick_smoothing_design, faults));
@@ -227,9 +189,28 @@ std::vector<FilterParts> all_filters(const TableFaults& faults, AverageSetting& 
     filters.push_back(biquad<Q15>("settle", settle_q15, settle_design, faults));
     filters.push_back(biquad<Q31>("settle-q31", settle_q31, settle_design, faults));
     filters.push_back(biquad<F32>("settle-f32", settle_f32, settle_design, faults));
-    filters.push_back(average_q15("average", HALFLSB_Q15, setting.points, &setting));
-    filters.push_back(average_q15("average-i16", HALFLSB_I16, 16));
-    filters.push_back(average_i32("average-i32", 16));
+    filters.push_back(level("level", false));
+    filters.push_back(level("level-rounded", true));
+    filters.push_back(drain("drain"));
+    filters.push_back(echo_comb("echo-comb"));
+    filters.push_back(adjustable_average("average", setting));
+    filters.push_back(average_of("average-q7", HALFLSB_Q7, 16));
+    filters.push_back(average_of("average-i8", HALFLSB_I8, 16));
+    filters.push_back(average_of("average-i16", HALFLSB_I16, 16));
+    filters.push_back(average_of("average-i16-big", HALFLSB_I16 | HALFLSB_BIG, 16));
+    filters.push_back(average_of("average-i24", HALFLSB_I24, 16));
+    filters.push_back(average_of("average-i24-packed", HALFLSB_I24 | HALFLSB_PACKED, 16));
+    filters.push_back(average_of("average-i32", HALFLSB_I32, 16));
+    filters.push_back(average_of("average-u8", HALFLSB_U8, 16));
+    filters.push_back(average_of("average-u12", HALFLSB_U12, 16));
+    filters.push_back(average_of("average-u12-left", HALFLSB_U12 | HALFLSB_LEFT, 16));
+    filters.push_back(average_of("average-u16", HALFLSB_U16, 16));
+    filters.push_back(
+        channels_of("pair", {average_of("left", HALFLSB_Q15, 16), average_of("right", HALFLSB_Q15, 16)}, true));
+    filters.push_back(channels_of(
+        "pair-mixed", {average_of("left", HALFLSB_Q15, 16), biquad<Q15>("right", settle_q15, settle_design, faults)},
+        false));
+    for (FilterParts& filter : filters) filter.what = what_it_is(filter);
     return filters;
 }
 

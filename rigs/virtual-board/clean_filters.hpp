@@ -4,12 +4,14 @@
 
 #include <cstdint>
 #include <functional>
+#include <limits>
 #include <memory>
 #include <string>
 #include <vector>
 
 #include "rigs/kit/halflsb_kit.h"
 #include "rigs/virtual-board/arithmetic_variants.hpp"
+#include "rigs/virtual-board/sample_words.hpp"
 
 namespace halflsb::board {
 
@@ -20,7 +22,11 @@ enum class FilterKind {
     asymmetric_fir,
     biquad_q15,
     biquad_q31,
-    biquad_f32
+    biquad_f32,
+    one_pole,
+    dc_blocker,
+    comb,
+    channels,  ///< several, each with a filter of its own
 };
 
 /// How the firmware came by its coefficients.
@@ -33,14 +39,21 @@ struct TableFaults {
 
 struct FilterParts {
     std::string name;
+    std::string what = {};  ///< for people: what it computes, and how it rounds
     FilterKind kind = FilterKind::average;
-    halflsb_format format = HALFLSB_Q15;  ///< in and out
+    Format format = HALFLSB_Q15;  ///< in and out
     std::uint8_t tables = 0;
     std::function<void()> reset, reset_half;
     std::function<void(const void* in, void* out, std::uint16_t count)> process;
     std::function<bool(std::uint8_t table, std::uint16_t offset, const std::int32_t* values, std::uint8_t count)> load;
     /// The same filter with a change of its arithmetic; reads the same tables. Empty for float.
     std::function<std::unique_ptr<CodeFilter>(const Deviation&)> variant;
+    /// Of a filter of several channels that of each, in order: they share their state with the functions above, which
+    /// act on all (but for reset_half and variant, which are empty).
+    std::vector<FilterParts> channels = {};
+    bool channels_alike = false;
+
+    std::size_t channel_count() const { return channels.empty() ? 1 : channels.size(); }
 };
 
 /// Window of the filter "average", which the setting "average-points" changes.
@@ -52,5 +65,16 @@ struct AverageSetting {
 
 /// In the order in which the board numbers them when it offers all.
 std::vector<FilterParts> all_filters(const TableFaults& faults, AverageSetting& setting);
+
+/// What a table's `load` does: false when the values do not fit the table or its words.
+template <typename Word>
+bool load_words(Word* table, std::size_t size, std::uint16_t offset, const std::int32_t* values, std::uint8_t count) {
+    if (std::size_t{offset} + count > size) return false;
+    for (int i = 0; i < count; ++i) {
+        if (values[i] < std::numeric_limits<Word>::min() || values[i] > std::numeric_limits<Word>::max()) return false;
+    }
+    for (int i = 0; i < count; ++i) table[offset + i] = static_cast<Word>(values[i]);
+    return true;
+}
 
 }  // namespace halflsb::board

@@ -57,10 +57,24 @@ const std::vector<FaultEntry> entries = {
     {"S07", "no-reset", "", "a reset does nothing", Shows::any_filter, pass_by<PassageFault::never_reset>},
     {"S11", "state-lost", "", "the state is lost at each block boundary", Shows::any_filter,
      pass_by<PassageFault::lost_at_block_boundary>},
+    {"S15", "shared-state", "", "both channels pass one filter and share its state", Shows::two_like_channels,
+     [](F faults, N, Ms) { faults.channels.shared_state = true; }},
+    {"S16", "crosstalk", "", "a 128th of channel 1's input (-42 dB) is added to channel 2's output",
+     Shows::two_channels, [](F faults, N, Ms) { faults.channels.crosstalk = true; }},
+    {"channels-swapped", "", "", "each channel's filter gets the other channel's samples", Shows::two_channels,
+     [](F faults, N, Ms) { faults.channels.swapped = true; }},
     {"S20", "bypass", "", "the output is the input", Shows::any_filter, pass_by<PassageFault::bypass>},
-    {"N04", "byte-swap", "", "the bytes of each input sample are swapped", Shows::any_filter,
+    {"N01", "offset-kept", "", "the mid-code is not subtracted from the input", Shows::offset_binary,
+     [](F faults, N, Ms) { faults.deviation.offset_kept = true; }},
+    {"N02", "offset-missing", "", "the mid-code is not added to the output, which stays signed", Shows::offset_binary,
+     [](F faults, N, Ms) { faults.deviation.offset_missing = true; }},
+    {"N04", "byte-swap", "", "the bytes of each input sample are swapped", Shows::several_bytes,
      pass_by<PassageFault::bytes_swapped>},
     {"N06", "polarity", "", "the input is inverted", Shows::any_filter, pass_by<PassageFault::polarity_inverted>},
+    {"wrong-justification", "", "", "output words are left-justified instead of right, or the other way",
+     Shows::spare_bits, [](F faults, N, Ms) { faults.wrong_justification = true; }},
+    {"settings-ignored", "", "", "a setting is taken and has no effect", Shows::setting,
+     [](F faults, N, Ms) { faults.settings_ignored = true; }},
     {"D01", "half-buffer-repeated", "", "each 10th half-buffer of 32 input samples is its predecessor",
      Shows::any_filter, pass_by<PassageFault::half_buffer_repeated>},
     {"D03", "sample-dropped", "", "each 1000th input sample is lost, the output held", Shows::any_filter,
@@ -85,6 +99,8 @@ const std::vector<FaultEntry> entries = {
     {"garbage", "", "", "a boot message at power-up and before the first answer", Shows::line,
      [](F faults, N, Ms) { faults.line.garbage = true; }},
     {"silent", "", "", "never answers", Shows::line, [](F faults, N, Ms) { faults.line.silent = true; }},
+    {"first-stream-silent", "", "", "greets and starts, but never answers the first stream", Shows::line,
+     [](F faults, N, Ms) { faults.line.first_stream_silent = true; }},
     {"echo-only", "", "", "returns each byte as it came", Shows::line,
      [](F faults, N, Ms) { faults.line.echo_only = true; }},
     {"wrong-build-id", "", "", "greets with the build-id of another image", Shows::line,
@@ -126,7 +142,7 @@ bool read_number(std::string_view text, Number& number) {
 std::string filters_showing(const FaultEntry& entry, const std::vector<FilterParts>& filters) {
     std::string names;
     for (const FilterParts& filter : filters) {
-        if (!shows_in(entry.shows, filter.kind)) continue;
+        if (!shows_in(entry.shows, filter)) continue;
         if (!names.empty()) names += ", ";
         names += filter.name;
     }
@@ -135,14 +151,23 @@ std::string filters_showing(const FaultEntry& entry, const std::vector<FilterPar
 
 }  // namespace
 
-bool shows_in(Shows shows, FilterKind kind) {
+bool shows_in(Shows shows, const FilterParts& filter) {
+    const FilterKind kind = filter.kind;
     const bool biquad = kind == FilterKind::biquad_q15 || kind == FilterKind::biquad_q31;
     const bool fir = kind == FilterKind::symmetric_fir || kind == FilterKind::asymmetric_fir;
     switch (shows) {
-        case Shows::any_filter:
-            return true;
-        case Shows::line:
-            return true;
+        case Shows::two_channels:
+            return filter.channels.size() == 2;
+        case Shows::two_like_channels:
+            return filter.channels.size() == 2 && filter.channels_alike;
+        default:
+            break;
+    }
+    if (!filter.channels.empty()) {
+        return std::any_of(filter.channels.begin(), filter.channels.end(),
+                           [shows](const FilterParts& channel) { return shows_in(shows, channel); });
+    }
+    switch (shows) {
         case Shows::fixed_average:
             return kind == FilterKind::average;
         // 30 bits are dropped from a q31 section: no stimulus of ours meets a tie there.
@@ -160,8 +185,17 @@ bool shows_in(Shows shows, FilterKind kind) {
             return biquad || kind == FilterKind::biquad_f32;
         case Shows::asymmetric_fir:
             return kind == FilterKind::asymmetric_fir;
+        case Shows::offset_binary:
+            return zero_code(filter.format) != 0;
+        case Shows::spare_bits:
+            return has_spare_bits(filter.format);
+        case Shows::several_bytes:
+            return word_bytes(filter.format) > 1;
+        case Shows::setting:
+            return kind == FilterKind::adjustable_average;
+        default:
+            return true;  // any filter, and the line
     }
-    return false;
 }
 
 const std::vector<FaultEntry>& fault_catalogue() { return entries; }
@@ -199,12 +233,24 @@ std::string add_fault(std::string_view text, const std::vector<FilterParts>& cho
         }
     }
     if (std::none_of(chosen.begin(), chosen.end(),
-                     [&](const FilterParts& filter) { return shows_in(entry->shows, filter.kind); })) {
+                     [&](const FilterParts& filter) { return shows_in(entry->shows, filter); })) {
         return "none of the chosen filters can show \"" + name + "\": " + std::string(entry->what);
     }
     entry->put(faults, n, ms);
     faults.names.emplace_back(text);
     return "";
+}
+
+std::string filter_list(const std::vector<FilterParts>& filters) {
+    std::string list;
+    for (const FilterParts& filter : filters) {
+        std::string name = filter.name, format = text_of(filter.format);
+        if (filter.channels.size() > 1) format += ", " + std::to_string(filter.channels.size()) + " channels";
+        name.resize(std::max<std::size_t>(name.size() + 2, 20), ' ');
+        format.resize(std::max<std::size_t>(format.size() + 2, 22), ' ');
+        list += name + format + filter.what + "\n";
+    }
+    return list;
 }
 
 std::string fault_list(const std::vector<FilterParts>& filters) {

@@ -1,35 +1,13 @@
 #include "rigs/virtual-board/filter_set.hpp"
 
 #include <algorithm>
-#include <cstring>
+#include <utility>
 
 namespace halflsb::board {
 
 namespace {
 
 constexpr std::string_view checkweigher = "load-cell,smoothing,quick-smoothing,mains-notch,settle,settle-q31";
-
-bool is_narrow(halflsb_format format) { return format == HALFLSB_Q15 || format == HALFLSB_I16; }
-
-std::int32_t code_at(const void* words, std::size_t i, bool narrow) {
-    std::int32_t wide = 0;
-    std::int16_t word = 0;
-    if (!narrow) {
-        std::memcpy(&wide, static_cast<const char*>(words) + 4 * i, 4);
-        return wide;
-    }
-    std::memcpy(&word, static_cast<const char*>(words) + 2 * i, 2);
-    return word;
-}
-
-void put_code(void* words, std::size_t i, bool narrow, std::int32_t code) {
-    const auto word = static_cast<std::int16_t>(code);
-    if (narrow) {
-        std::memcpy(static_cast<char*>(words) + 2 * i, &word, 2);
-    } else {
-        std::memcpy(static_cast<char*>(words) + 4 * i, &code, 4);
-    }
-}
 
 /// The filter of rigs/filters, a sample at a time.
 class CleanSteps : public CodeFilter {
@@ -38,11 +16,10 @@ public:
     void reset() override { parts_.reset(); }
     void reset_half() override { parts_.reset_half(); }
     std::int32_t step(std::int32_t x) override {
-        alignas(4) char word[4];
-        const bool narrow = is_narrow(parts_.format);
-        put_code(word, 0, narrow, x);
+        alignas(4) std::uint8_t word[4];
+        put_code(word, 0, parts_.format, x);
         parts_.process(word, word, 1);
-        return code_at(word, 0, narrow);
+        return code_at(word, 0, parts_.format);
     }
 
 private:
@@ -51,33 +28,55 @@ private:
 
 }  // namespace
 
-OfferedFilter::OfferedFilter(FilterParts parts, const Faults& faults) : parts_(std::move(parts)) {
-    const bool deviates = faults.deviation.any() && parts_.variant != nullptr;
-    if (!deviates && faults.passage.empty()) return;
-    if (deviates) {
-        faulty_ = parts_.variant(faults.deviation);
-    } else {
-        faulty_ = std::make_unique<CleanSteps>(parts_);
+OfferedFilter::OfferedFilter(FilterParts parts, const Faults& faults)
+    : parts_(std::move(parts)), out_format_(parts_.format) {
+    const std::vector<FilterParts> channels =
+        parts_.channels.empty() ? std::vector<FilterParts>{parts_} : parts_.channels;
+    if (channels.size() == 2) channel_faults_ = faults.channels;
+    if (!parts_.channels_alike) channel_faults_.shared_state = false;
+    if (faults.wrong_justification && has_spare_bits(parts_.format)) out_format_ = other_justification(parts_.format);
+    const auto deviates = [&](const FilterParts& channel) {
+        return faults.deviation.any() && channel.variant != nullptr;
+    };
+    if (faults.passage.empty() && !channel_faults_.any() && out_format_ == parts_.format &&
+        std::none_of(channels.begin(), channels.end(), deviates)) {
+        return;
     }
-    for (PassageFault fault : faults.passage) faulty_ = with_fault(fault, parts_.format, std::move(faulty_));
+    for (const FilterParts& channel : channels) {
+        std::unique_ptr<CodeFilter> filter;
+        if (deviates(channel)) {
+            filter = channel.variant(faults.deviation);
+        } else {
+            filter = std::make_unique<CleanSteps>(channel);
+        }
+        for (PassageFault fault : faults.passage) filter = with_fault(fault, channel.format, std::move(filter));
+        faulty_.push_back(std::move(filter));
+    }
 }
 
 void OfferedFilter::reset() {
-    if (faulty_ == nullptr) {
-        parts_.reset();
-    } else {
-        faulty_->reset();
-    }
+    if (faulty_.empty()) parts_.reset();
+    for (const auto& channel : faulty_) channel->reset();
 }
 
 void OfferedFilter::process(const void* in, void* out, std::uint16_t count) {
-    if (faulty_ == nullptr) {
+    if (faulty_.empty()) {
         parts_.process(in, out, count);
         return;
     }
-    const bool narrow = is_narrow(parts_.format);
-    faulty_->begin_block();
-    for (std::size_t i = 0; i < count; ++i) put_code(out, i, narrow, faulty_->step(code_at(in, i, narrow)));
+    const std::size_t channels = faulty_.size();
+    std::vector<std::int32_t> codes(channels);
+    for (const auto& channel : faulty_) channel->begin_block();
+    for (std::size_t first = 0; first < channels * count; first += channels) {
+        for (std::size_t c = 0; c < channels; ++c) codes[c] = code_at(in, first + c, parts_.format);
+        if (channel_faults_.swapped) std::swap(codes[0], codes[1]);
+        const std::int32_t leak = channel_faults_.crosstalk ? codes[0] >> 7 : 0;
+        for (std::size_t c = 0; c < channels; ++c) {
+            codes[c] = faulty_[channel_faults_.shared_state ? 0 : c]->step(codes[c]);
+        }
+        if (leak != 0) codes[1] = std::clamp(codes[1] + leak, -32768, 32767);  // pairs are q15
+        for (std::size_t c = 0; c < channels; ++c) put_code(out, first + c, out_format_, codes[c]);
+    }
 }
 
 bool OfferedFilter::load(std::uint8_t table, std::uint16_t offset, const std::int32_t* values, std::uint8_t count) {

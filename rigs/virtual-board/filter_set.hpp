@@ -22,7 +22,9 @@ public:
 
 private:
     FilterParts parts_;
-    std::unique_ptr<CodeFilter> faulty_;  // null: the filter is right
+    std::vector<std::unique_ptr<CodeFilter>> faulty_;  // one a channel; none: the filter is right
+    ChannelFaults channel_faults_;
+    Format out_format_;
 };
 
 /// `choice`: "all", "cw-7", or names with commas between. An empty list: no such filter, and `problem` says so.

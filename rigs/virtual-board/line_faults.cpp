@@ -21,6 +21,20 @@ void SpoiltDirection::append(const std::uint8_t* bytes, std::size_t count, std::
     }
 }
 
+bool FirstStream::has(const std::vector<std::uint8_t>& answer) {
+    // docs/wire.md: answers outside the stream begin with a delimiter; then COBS puts one byte before the type.
+    constexpr std::uint8_t started = 0x82, response = 0x90, done = 0x91, expect = 0x92;
+    const std::size_t type_at = !answer.empty() && answer[0] == 0 ? 2 : 1;
+    if (answer.size() <= type_at) return false;
+    const std::uint8_t type = answer[type_at];
+    if (type == started) {
+        // The same START asked again has the same answer, and opens no other stream.
+        if (started_.empty()) started_ = answer;
+        is_over_ = is_over_ || answer != started_;
+    }
+    return !is_over_ && (type == response || type == done || type == expect);
+}
+
 std::vector<std::uint8_t> boot_message() {
     constexpr std::string_view text = "\r\nCW-7 load cell, loader 1.4\r\nself test ok\r\n";
     std::vector<std::uint8_t> message(text.begin(), text.end());

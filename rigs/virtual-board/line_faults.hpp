@@ -1,4 +1,4 @@
-// Faults of the line and of how the board behaves on it, at the level of bytes. They know nothing of frames or filters.
+// Faults of the line and of how the board behaves on it, at the level of bytes. They know nothing of filters.
 #pragma once
 
 #include <cstddef>
@@ -13,12 +13,13 @@ struct LineFaults {
     std::uint64_t flip_in_every = 0, drop_in_every = 0;              ///< toward the board
     std::uint64_t stall_every = 0;                                   ///< toward the host
     std::uint32_t stall_ms = 0;
-    bool garbage = false;             ///< a boot message at power-up and before the first answer
-    bool silent = false;              ///< listens, never answers
-    bool echo_only = false;           ///< returns each byte as it came
-    bool wrong_build_id = false;      ///< greets with another image's
-    std::uint64_t unplug_after = 0;   ///< answers of blocks, then the device is gone
-    std::uint64_t restart_after = 0;  ///< blocks, then the board starts anew, once
+    bool garbage = false;              ///< a boot message at power-up and before the first answer
+    bool silent = false;               ///< listens, never answers
+    bool first_stream_silent = false;  ///< the first stream gets no answer, all else does
+    bool echo_only = false;            ///< returns each byte as it came
+    bool wrong_build_id = false;       ///< greets with another image's
+    std::uint64_t unplug_after = 0;    ///< answers of blocks, then the device is gone
+    std::uint64_t restart_after = 0;   ///< blocks, then the board starts anew, once
 };
 
 /// The bytes of one direction, each nth flipped in one bit (which bit goes round), lost, or doubled.
@@ -32,6 +33,17 @@ public:
 private:
     std::uint64_t flip_every_, drop_every_, repeat_every_;
     std::uint64_t passed_ = 0, flipped_ = 0;
+};
+
+/// Tells the answers to the first stream after power-up: whoever asks again in a stream of its own is answered.
+class FirstStream {
+public:
+    /// Of one answer of the kit, as it goes onto the line, in the order in which they come.
+    bool has(const std::vector<std::uint8_t>& answer);
+
+private:
+    std::vector<std::uint8_t> started_;  // the first STARTED
+    bool is_over_ = false;
 };
 
 /// What a board says that was never asked: text, a delimiter in the middle, bytes of no meaning.

@@ -31,6 +31,10 @@ int main(int argument_count, char** arguments) {
     AverageSetting average;
     const std::vector<FilterParts> known = choose_filters(options.filter_set, all_filters({}, average), problem);
     if (known.empty()) return complain(problem, bad_command_line);
+    if (options.list_filters) {
+        std::cout << filter_list(known);
+        return 0;
+    }
     if (options.list_faults) {
         std::cout << fault_list(known);
         return 0;
@@ -41,7 +45,8 @@ int main(int argument_count, char** arguments) {
         if (!problem.empty()) return complain(problem, bad_command_line);
     }
     std::vector<FilterParts> chosen = choose_filters(options.filter_set, all_filters(faults.tables, average), problem);
-    if (chosen.size() > most_filters) return complain("at most 16 filters", bad_command_line);
+    if (chosen.size() > most_filters)
+        return complain("at most " + std::to_string(most_filters) + " filters", bad_command_line);
 
     if (options.dies_with_parent) ::prctl(PR_SET_PDEATHSIG, SIGTERM);
     take_signals();

@@ -80,6 +80,7 @@ const std::vector<Option>& table() {
         {"--ready-fd", "N", "write the device's name to that descriptor too, once served",
          [](const std::string& value, Options& o) { return read_number(value, o.ready_descriptor, 0, 1'000'000); }},
         {"--parent-dies", "", "end when the process that started this one ends", flag(&Options::dies_with_parent)},
+        {"--list-filters", "", "print the filters, their formats and how they round", flag(&Options::list_filters)},
         {"--list-faults", "", "print the faults and the filters that can show each", flag(&Options::list_faults)},
         {"--help", "", "print this", flag(&Options::help)},
     };

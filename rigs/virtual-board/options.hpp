@@ -16,7 +16,7 @@ struct Options {
     std::uint16_t block_samples = 0;  ///< 0: as compiled
     std::uint8_t credit_blocks = 0;
     int ready_descriptor = -1;
-    bool dies_with_parent = false, list_faults = false, help = false;
+    bool dies_with_parent = false, list_filters = false, list_faults = false, help = false;
 };
 
 /// "" or what is wrong with the command line.

@@ -2,7 +2,6 @@
 
 #include <array>
 #include <functional>
-#include <limits>
 #include <utility>
 
 namespace halflsb::board {
@@ -31,15 +30,16 @@ private:
 
 class OneSampleLate : public Around {
 public:
-    using Around::Around;
+    OneSampleLate(std::unique_ptr<CodeFilter> inner, std::int32_t zero)
+        : Around(std::move(inner)), zero_(zero), previous_(zero) {}
     void reset() override {
         Around::reset();
-        previous_ = 0;
+        previous_ = zero_;
     }
     std::int32_t step(std::int32_t x) override { return std::exchange(previous_, Around::step(x)); }
 
 private:
-    std::int32_t previous_ = 0;
+    std::int32_t zero_, previous_;
 };
 
 class HalfReset : public Around {
@@ -77,20 +77,6 @@ private:
     std::function<std::int32_t(std::int32_t)> change_;
 };
 
-std::int32_t swapped_16(std::int32_t x) {
-    return static_cast<std::int16_t>(__builtin_bswap16(static_cast<std::uint16_t>(x & 0xFFFF)));
-}
-std::int32_t swapped_32(std::int32_t x) {
-    return static_cast<std::int32_t>(__builtin_bswap32(static_cast<std::uint32_t>(x)));
-}
-std::int32_t inverted_16(std::int32_t x) { return x == -32768 ? 32767 : -x; }
-std::int32_t inverted_32(std::int32_t x) {
-    return x == std::numeric_limits<std::int32_t>::min() ? std::numeric_limits<std::int32_t>::max() : -x;
-}
-std::int32_t inverted_float(std::int32_t bits) {
-    return static_cast<std::int32_t>(static_cast<std::uint32_t>(bits) ^ 0x80000000u);
-}
-
 class HalfBufferRepeated : public Around {
 public:
     using Around::Around;
@@ -117,7 +103,6 @@ public:
     void reset() override {
         Around::reset();
         count_ = 0;
-        held_ = 0;
     }
     std::int32_t step(std::int32_t x) override {
         if (++count_ == event_period_samples) {
@@ -131,17 +116,18 @@ public:
 private:
     bool drops_;
     std::uint32_t count_ = 0;
-    std::int32_t held_ = 0;
+    std::int32_t held_ = 0;  // set by the samples before the first event
 };
 
 }  // namespace
 
-std::unique_ptr<CodeFilter> with_fault(PassageFault fault, halflsb_format format, std::unique_ptr<CodeFilter> filter) {
-    const bool narrow = format == HALFLSB_Q15 || format == HALFLSB_I16;
-    const auto inverted = format == HALFLSB_F32 ? inverted_float : narrow ? inverted_16 : inverted_32;
+std::unique_ptr<CodeFilter> with_fault(PassageFault fault, Format format, std::unique_ptr<CodeFilter> filter) {
+    const auto change_by = [format](std::int32_t (*change)(Format, std::int32_t)) {
+        return [format, change](std::int32_t x) { return change(format, x); };
+    };
     switch (fault) {
         case PassageFault::one_sample_late:
-            return std::make_unique<OneSampleLate>(std::move(filter));
+            return std::make_unique<OneSampleLate>(std::move(filter), zero_code(format));
         case PassageFault::reset_clears_half:
             return std::make_unique<HalfReset>(std::move(filter));
         case PassageFault::never_reset:
@@ -151,9 +137,9 @@ std::unique_ptr<CodeFilter> with_fault(PassageFault fault, halflsb_format format
         case PassageFault::bypass:
             return std::make_unique<Bypass>(std::move(filter));
         case PassageFault::bytes_swapped:
-            return std::make_unique<AtInput>(std::move(filter), narrow ? swapped_16 : swapped_32);
+            return std::make_unique<AtInput>(std::move(filter), change_by(bytes_swapped));
         case PassageFault::polarity_inverted:
-            return std::make_unique<AtInput>(std::move(filter), inverted);
+            return std::make_unique<AtInput>(std::move(filter), change_by(inverted));
         case PassageFault::half_buffer_repeated:
             return std::make_unique<HalfBufferRepeated>(std::move(filter));
         case PassageFault::sample_dropped:

@@ -3,8 +3,8 @@
 
 #include <memory>
 
-#include "rigs/kit/halflsb_kit.h"
 #include "rigs/virtual-board/code_filter.hpp"
+#include "rigs/virtual-board/sample_words.hpp"
 
 namespace halflsb::board {
 
@@ -21,7 +21,7 @@ enum class PassageFault {
     sample_duplicated,       ///< D04: each 1000th passes the filter twice
 };
 
-/// `format` as in the greeting: it decides what a swapped or an inverted sample is.
-std::unique_ptr<CodeFilter> with_fault(PassageFault fault, halflsb_format format, std::unique_ptr<CodeFilter> filter);
+/// `format` decides what zero is, and what a swapped or an inverted sample.
+std::unique_ptr<CodeFilter> with_fault(PassageFault fault, Format format, std::unique_ptr<CodeFilter> filter);
 
 }  // namespace halflsb::board

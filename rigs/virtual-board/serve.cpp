@@ -70,6 +70,7 @@ private:
     LineFaults faults_;
     PacedLine in_, out_;
     SpoiltDirection spoilt_in_, spoilt_out_;
+    FirstStream first_stream_;
     Statistics statistics_;
     std::vector<std::uint8_t> output_, spoilt_;
     std::array<std::uint8_t, 16384> input_{};
@@ -116,7 +117,8 @@ void Server::take_input(Nanoseconds now) {
 void Server::let_board_work(Nanoseconds now) {
     if (output_.empty()) out_.idle(now);
     while (output_.size() < output_bytes_most && board_.poll()) {
-        if (!faults_.silent) say(board_.written());
+        const bool is_kept_back = faults_.first_stream_silent && first_stream_.has(board_.written());
+        if (!faults_.silent && !is_kept_back) say(board_.written());
         board_.written().clear();
         count_blocks(now);
         if (faults_.restart_after != 0 && !restarted_ && board_.blocks() >= faults_.restart_after) {

@@ -1,6 +1,6 @@
 // Writes what the board returned to the capture file, before anything looks at it, and reads it back
 // for a second pass. The file is NPY 1.0 in the codes of the output format, shape (samples,) or
-// (samples, channels).
+// (samples, channels). What was sent is kept in the same way, in the codes of the input format.
 #pragma once
 
 #include <cstddef>
@@ -29,6 +29,8 @@ public:
     std::int64_t samples() const { return samples_; }
     /// Samples that were appended, from instant first_index on; they must all be there.
     Outcome<void> read(std::int64_t first_index, std::span<Code> codes);
+    /// Another final name in the same folder, for the capture of an attempt that another one follows.
+    void rename(const std::string& path) { file_->rename(path); }
     /// Writes the length into the header and gives the file its name.
     Outcome<void> finish();
     /// Leaves nothing behind.

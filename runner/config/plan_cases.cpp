@@ -2,6 +2,7 @@
 #include <algorithm>
 #include <limits>
 
+#include "runner/config/plan_each.hpp"
 #include "runner/config/plan_reader.hpp"
 #include "runner/config/plan_words.hpp"
 #include "runner/world/printable.hpp"
@@ -167,6 +168,7 @@ public:
         Case& the_case = read_.the_case;
         the_case.rate_hz = values.number(recipe, "rate_hz");
         the_case.labels = read_labels(reader_);
+        reader_.entry(each_word);
         // Known before its inner tables are read, so that a key of the case under their headers is told from
         // an unknown one.
         const TomlValue* stimulus_table = reader_.table("stimulus", true);
@@ -185,7 +187,6 @@ public:
         read_start(reader_, values, stimulus ? stimulus->stimulus.get() : nullptr, the_case);
         read_filter_at(reader_, facts_, rate_hz, the_case);
         reader_.refuse_unknown_keys();
-        read_.has_rules = rules.first.has_value();
         read_.is_clean = reader_.is_clean() && stimulus && rules.is_clean;
         if (!read_.is_clean) return std::move(read_);
         the_case.shape = stimulus->shape;

@@ -1,12 +1,16 @@
 #include "runner/config/plan_file.hpp"
 
 #include <algorithm>
+#include <deque>
+#include <iterator>
 #include <map>
 
 #include "oracle/judge/admission.hpp"
 #include "oracle/judge/case_judge.hpp"
 #include "runner/config/document.hpp"
+#include "runner/config/plan_each.hpp"
 #include "runner/config/plan_reader.hpp"
+#include "runner/config/plan_tree.hpp"
 #include "runner/config/plan_words.hpp"
 #include "stimuli/number_text.hpp"
 
@@ -54,64 +58,90 @@ void settle_common_latency(Plan& plan, const std::vector<Rule>& common, Problems
     }
 }
 
+/// Whether it says something under rule, be it wrong.
+bool has_rule(const TomlValue& table) {
+    const TomlEntry* entry = table.find("rule");
+    return entry != nullptr && !(entry->value.kind == TomlValue::Kind::array && entry->value.items.empty());
+}
+
 class PlanFile {
 public:
-    PlanFile(const Document& document, const std::string& path, const Files& files, const PlanOptions& options)
-        : tree_(document.tree),
-          path_(path),
+    PlanFile(Document document, const std::string& path, const Files& files, const PlanOptions& options)
+        : document_(std::move(document)),
+          tree_(document_.tree),
+          shown_name_(options.shown_name.empty() ? path : options.shown_name),
           options_(options),
-          problems_(document.source),
+          problems_(document_.source, shown_name_),
           context_{problems_, files, options.root.empty() ? folder_of(path) : options.root, std::nullopt, {}} {}
 
+    PlanFile(const PlanFile&) = delete;
+    PlanFile& operator=(const PlanFile&) = delete;
+
     std::variant<Plan, ReadProblems> read() {
+        if (!join_includes(document_, context_, included_)) return problems_.sorted();
         TableReader top(context_, tree_, "");
         const ParameterValues values = top.parameters(plan_recipe());
         // All words of the top are known before the tables below are read: the trap of a top-level key
         // under a header is told by them.
         for (const std::string_view key : {"signal", "arithmetic", "filter", "rule", "case"}) top.entry(key);
+        top.entry(include_word);
         const auto signal = read_signal(context_, top);
         if (signal) context_.nyquist_hz = signal->rate_hz / 2.0;
         const auto filters = read_filters(context_, top, signal ? &*signal : nullptr);
         const PlanFacts facts{signal ? &*signal : nullptr, filters ? &*filters : nullptr};
         const ReadRules common = read_rules(context_, top, facts);
         std::vector<ReadCase> cases = read_cases(top, facts);
-        check_presence(top, common, cases);
+        check_presence(top, common);
         top.refuse_unknown_keys();
 
         if (signal && filters && common.is_clean) admit(facts, common.rules, cases);
         if (problems_.count() > 0) return problems_.sorted();
         plan_.title = *values.text(plan_recipe(), "title");
+        plan_.parts.push_back({"", std::move(document_.bytes)});
+        std::move(context_.parts.begin(), context_.parts.end(), std::back_inserter(plan_.parts));
         return std::move(plan_);
     }
 
 private:
     std::vector<ReadCase> read_cases(TableReader& top, const PlanFacts& facts) {
+        std::vector<CaseExpansion> expansions;
+        for (const TomlValue* table : top.tables("case")) expansions.emplace_back(*table, problems_);
         std::vector<ReadCase> cases;
-        std::map<std::string, Place> places;
-        for (const TomlValue* table : top.tables("case")) {
-            cases.push_back(read_case(context_, *table, top, facts, options_.seed));
-            const ReadCase& read = cases.back();
-            if (!read.name_place) continue;
-            const auto [first, is_new] = places.emplace(read.the_case.name, *read.name_place);
-            if (is_new) continue;
-            problems_.add(*read.name_place,
-                          "two cases are called " + quoted(read.the_case.name) + ", the other one in " +
-                              problems_.line_text(first->second, *read.name_place),
-                          "give each case a name of its own; --case chooses by it");
+        if (has_too_many(expansions, problems_)) return cases;
+        std::map<std::string, Place> names;
+        for (const CaseExpansion& expansion : expansions) {
+            if (!expansion.is_clean()) continue;
+            const auto count = static_cast<std::size_t>(expansion.count());
+            for (std::size_t i = 0; i < count; ++i) {
+                const auto table = expansion.at(i, problems_);
+                if (!table) continue;
+                cases.push_back(read_case(context_, *table, top, facts, options_.seed));
+                check_name(cases.back(), names);
+            }
         }
         return cases;
     }
 
-    void check_presence(TableReader& top, const ReadRules& common, const std::vector<ReadCase>& cases) {
-        if (tree_.find("case") == nullptr || (cases.empty() && tree_.find("case")->value.items.empty() &&
-                                              tree_.find("case")->value.kind == TomlValue::Kind::array)) {
+    void check_name(const ReadCase& read, std::map<std::string, Place>& names) {
+        if (!read.name_place) return;
+        const auto [first, is_new] = names.emplace(read.the_case.name, *read.name_place);
+        if (is_new) return;
+        problems_.add(*read.name_place,
+                      "two cases are called " + quoted(read.the_case.name) + ", the other one in " +
+                          problems_.line_text(first->second, *read.name_place),
+                      "give each case a name of its own; --case chooses by it");
+    }
+
+    void check_presence(TableReader& top, const ReadRules& common) {
+        const TomlEntry* cases = tree_.find("case");
+        if (cases == nullptr || (cases->value.kind == TomlValue::Kind::array && cases->value.items.empty())) {
             top.refuse(top.place_of("case"), "the file has no [[case]]",
                        "add one with a name, a [case.stimulus] and, unless there is a [[rule]], a [[case.rule]]");
             return;
         }
-        const bool has_rule = common.first || std::any_of(cases.begin(), cases.end(),
-                                                          [](const ReadCase& read) { return read.has_rules; });
-        if (!has_rule && tree_.find("rule") == nullptr) {
+        const bool has_own = std::any_of(cases->value.items.begin(), cases->value.items.end(),
+                                         [](const TomlValue& t) { return has_rule(t); });
+        if (!common.first && !has_rule(tree_) && !has_own) {
             top.refuse(top.place(), "the file has no rule, so it judges nothing",
                        "add a [[rule]] for every case, or a [[case.rule]] to one");
         }
@@ -119,7 +149,7 @@ private:
 
     /// Joins what was read, and asks the judge which rules the stimuli cannot answer.
     void admit(const PlanFacts& facts, const std::vector<Rule>& common, std::vector<ReadCase>& cases) {
-        plan_.file = path_;
+        plan_.file = shown_name_;
         plan_.signal = *facts.signal;
         plan_.filter = facts.filters->chain;
         plan_.filter_is_unknown = facts.filters->is_unknown;
@@ -139,8 +169,10 @@ private:
         }
     }
 
+    Document document_;
+    std::deque<SourceText> included_;
     const TomlValue& tree_;
-    std::string path_;
+    std::string shown_name_;
     PlanOptions options_;
     Problems problems_;
     ReadContext context_;
@@ -159,15 +191,23 @@ std::optional<std::string> seed_problem(std::uint64_t seed) {
     return std::nullopt;
 }
 
+/// Told even when the plan names no file: a mistyped root must not wait for the first one that does.
+std::optional<std::string> root_problem(const std::string& root, const Files& files) {
+    if (root.empty() || !files.resolved(root + "/.").empty()) return std::nullopt;
+    return render_without_line("--root", "there is no folder " + quoted(root),
+                               "give a folder that exists; files that the plan names lie under it");
+}
+
 }  // namespace
 
 std::variant<Plan, ReadProblems> read_plan(const std::string& path, const Files& files, const PlanOptions& options) {
     if (options.seed) {
         if (auto problem = seed_problem(*options.seed)) return ReadProblems{{std::move(*problem)}};
     }
+    if (auto problem = root_problem(options.root, files)) return ReadProblems{{std::move(*problem)}};
     auto document = open_document(path, files, "docs/plan.md");
     if (auto* problems = std::get_if<ReadProblems>(&document)) return std::move(*problems);
-    return PlanFile(std::get<Document>(document), path, files, options).read();
+    return PlanFile(std::get<Document>(std::move(document)), path, files, options).read();
 }
 
 }  // namespace halflsb

@@ -23,7 +23,9 @@ struct PlanOptions {
     std::string shown_name = {};
 };
 
-/// A plan comes with a pull request: it can name no command, no link, and no file outside the root.
+/// A plan comes with a pull request: it can name no command, no link, and no file outside the root. What it
+/// includes is joined (plan_tree.hpp), [case.each] expanded (plan_each.hpp); positions in an included file call it
+/// by its path under the root.
 /// Costs up to one pass of the reference for each case with a written latency rule, which is refused
 /// where the case cannot tell (judge/admission.hpp).
 std::variant<Plan, ReadProblems> read_plan(const std::string& path, const Files& files,

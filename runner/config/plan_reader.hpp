@@ -44,7 +44,6 @@ struct ReadCase {
     Case the_case;
     Place place;
     std::optional<Place> name_place;
-    bool has_rules = false;  ///< some of its own stand in the file
     bool is_clean = false;   ///< then it has a stimulus; its rules are its own only
 };
 ReadCase read_case(ReadContext& context, const TomlValue& table, const TableReader& top, const PlanFacts& facts,

@@ -27,6 +27,8 @@ public:
     virtual Outcome<void> patch_start(std::span<const std::byte> bytes) = 0;
     /// Reads what was written, from byte `offset` on; all of it must be there.
     virtual Outcome<void> read_back(std::size_t offset, std::span<std::byte> bytes) = 0;
+    /// Another final name in the same folder. Before commit().
+    virtual void rename(const std::string& path) = 0;
     /// Flushes to the disk and takes the final name. Only once, nothing after it.
     virtual Outcome<void> commit() = 0;
     virtual void discard() = 0;

@@ -159,9 +159,9 @@ Outcome<std::string> DiskFiles::read_under_root(const std::string& root, const s
     }
     const std::string real_path = real.get();
     const std::string prefix = real_root == "/" ? real_root : real_root + "/";
+    if (real_path == real_root) return refused(place, "it is a folder, not a regular file", "name a regular file");
     if (real_path.size() <= prefix.size() || real_path.compare(0, prefix.size(), prefix) != 0) {
-        return refused(place, "it lies outside the root " + root + (real_path == real_root ? "" : ", at " + real_path),
-                       std::string(outside_remedy));
+        return refused(place, "it lies outside the root " + root + ", at " + real_path, std::string(outside_remedy));
     }
     auto file = open_without_links(place, real_root, std::string_view(real_path).substr(prefix.size()), cap_bytes);
     if (!file) return file.error();

@@ -61,7 +61,8 @@ std::string folder_of(const std::string& path) {
 
 class DiskOutputFile final : public OutputFile {
 public:
-    DiskOutputFile(std::string path, FileDescriptor file) : path_(std::move(path)), file_(std::move(file)) {}
+    DiskOutputFile(std::string path, FileDescriptor file)
+        : path_(std::move(path)), part_path_(path_ + ".part"), file_(std::move(file)) {}
     ~DiskOutputFile() override { discard(); }
     DiskOutputFile(const DiskOutputFile&) = delete;
     DiskOutputFile& operator=(const DiskOutputFile&) = delete;
@@ -95,9 +96,11 @@ public:
         return {};
     }
 
+    void rename(const std::string& path) override { path_ = path; }
+
     Outcome<void> commit() override {
         if (fsync(file_.number()) != 0 || file_.close_now() != 0 ||
-            std::rename(part_path().c_str(), path_.c_str()) != 0) {
+            std::rename(part_path_.c_str(), path_.c_str()) != 0) {
             return writing_error(path_, errno);
         }
         done_ = true;
@@ -109,14 +112,13 @@ public:
 
     void discard() override {
         file_.close_now();
-        if (!done_) (void)std::remove(part_path().c_str());
+        if (!done_) (void)std::remove(part_path_.c_str());
         done_ = true;
     }
 
 private:
-    std::string part_path() const { return path_ + ".part"; }
-
     std::string path_;
+    std::string part_path_;  ///< until commit(), whatever the final name becomes
     FileDescriptor file_;
     bool done_ = false;
 };

@@ -17,6 +17,7 @@ constexpr int exit_status_interrupted = 130;
 
 // Lock-free atomics are the only shared state that a handler may touch besides sig_atomic_t.
 std::atomic<int> requests{0};
+std::atomic<int> lulls{0};
 std::atomic<int> signal_number{0};
 std::atomic<int> descriptor{-1};
 static_assert(std::atomic<int>::is_always_lock_free);
@@ -67,7 +68,11 @@ Outcome<void> watch_for_interrupts() {
     return {};
 }
 
-bool interrupted() { return requests.load() > 0; }
+bool interrupted() { return requests.load() > 0 && lulls.load() == 0; }
+
+InterruptLull::InterruptLull() { lulls.fetch_add(1); }
+
+InterruptLull::~InterruptLull() { lulls.fetch_sub(1); }
 
 int interrupt_descriptor() { return descriptor.load(); }
 

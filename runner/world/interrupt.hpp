@@ -15,8 +15,18 @@ namespace halflsb {
 /// Errors (kind defect): the system has no descriptor left.
 Outcome<void> watch_for_interrupts();
 
-/// True from the first signal (or request_interrupt) on.
+/// True from the first signal (or request_interrupt) on, but not while an InterruptLull lives.
 bool interrupted();
+
+/// A moment for tidying up after the request: waits do not see it meanwhile, so they need short deadlines. A second
+/// signal still leaves the program at once.
+class InterruptLull {
+public:
+    InterruptLull();
+    ~InterruptLull();
+    InterruptLull(const InterruptLull&) = delete;
+    InterruptLull& operator=(const InterruptLull&) = delete;
+};
 
 /// Readable from the moment interrupted() is true, so that a wait can watch it; -1 before
 /// watch_for_interrupts(). Never read or close it; duplicate it to hand it on.

@@ -36,7 +36,7 @@ struct FirmwareCheck {
 
 /// How a case travelled.
 struct StreamFacts {
-    std::int64_t samples_sent = 0, samples_received = 0;
+    std::int64_t samples_sent = 0, samples_received = 0;  ///< instants, the zeros of a flush among them
     std::int64_t bytes_to_board = 0, bytes_to_host = 0;
     std::int64_t frames_bad_at_host = 0, resends = 0;
     /// The board's own counters; none when it was not or could not be asked.
@@ -44,7 +44,7 @@ struct StreamFacts {
     double streaming_s = 0.0;
     /// Bytes of the busier direction x 10 / baud, over streaming_s; none where baud has no meaning.
     std::optional<double> line_use_ratio;
-    std::uint64_t ticks_total = 0;
+    std::uint64_t ticks_total = 0;    ///< of the stimulus, without the zeros of a flush
     std::uint32_t ticks_largest = 0;  ///< of one sample
 };
 

@@ -56,7 +56,10 @@ class Arithmetic:
 
 
 class Average:
-    def __init__(self, points, bits, faults):
+    """Of signed samples; `offset` binary is made signed, averaged, and put back."""
+
+    def __init__(self, points, bits, faults, offset=False):
+        self.faults, self.middle = faults, 1 << (bits - 1) if offset else 0
         self.arithmetic = Arithmetic(faults, bits)
         self.points, self.length = points, points - (1 if "S02" in faults else 0)
         self.narrow = "A10" in faults
@@ -70,12 +73,21 @@ class Average:
         self.position = self.sum = 0
 
     def step(self, x):
+        if not self.middle:
+            return self.mean(x)
+        code = x % (2 * self.middle)  # bits above are not looked at
+        y = self.mean(code if "N01" in self.faults else code - self.middle)
+        return y if "N02" in self.faults else y + self.middle
+
+    def mean(self, x):
         self.sum += x - self.ring[self.position]
         if self.narrow:
             self.sum = wrap(self.sum, self.arithmetic.bits)
         self.ring[self.position] = x
         self.position = (self.position + 1) % self.length
         y = self.arithmetic.round(self.sum, self.points << self.arithmetic.more_shift)
+        if not self.faults:
+            return y  # the mean of what came needs no saturation
         return into_word(y, self.arithmetic.bits, self.arithmetic.wraps)
 
 
@@ -133,6 +145,63 @@ class Biquad:
         return x
 
 
+class OnePole:
+    """y += (x - y) / 16, the state exact, cut to a sample at the output and in the feedback."""
+
+    def __init__(self, rounds):
+        self.cut = ROUNDINGS["half-up" if rounds else "floor"]
+        self.reset()
+
+    def reset(self):
+        self.state = 0
+
+    def reset_half(self):
+        self.state -= self.state % 65536  # the lower 16 bits
+
+    def step(self, x):
+        self.state += x - self.cut(self.state, 16)
+        return self.cut(self.state, 16)
+
+
+class DcBlocker:
+    """The state in 2^-15 of a code; the pole at 1 - 2^-8 is a leak of 128 / 2^15."""
+
+    def __init__(self):
+        self.reset()
+
+    def reset(self):
+        self.state = self.previous = 0
+
+    def reset_half(self):
+        self.state = 0
+
+    def step(self, x):
+        self.state += (x - self.previous) * 32768 - 128 * (self.state // 32768)
+        self.previous = x
+        return into_word(self.state // 32768, 16, False)
+
+
+class Comb:
+    """1/2 x[n] + 1/4 x[n-24] + 1/4 y[n-24]: in quarters, halves upward."""
+
+    def __init__(self):
+        self.reset()
+
+    def reset(self):
+        self.past_in, self.past_out, self.position = [0] * 24, [0] * 24, 0
+
+    def reset_half(self):
+        self.past_in, self.position = [0] * 24, 0
+
+    def step(self, x):
+        at = self.position
+        quarters = 2 * x + self.past_in[at] + self.past_out[at]
+        y = into_word(ROUNDINGS["half-up"](quarters, 4), 16, False)
+        self.past_in[at], self.past_out[at] = x, y
+        self.position = (at + 1) % 24
+        return y
+
+
 class FloatBiquad:
     def __init__(self, numbers, faults):
         self.sections = []
@@ -159,15 +228,49 @@ class FloatBiquad:
         return float(x)
 
 
+class Word:
+    """How a code lies in its bytes."""
+
+    def __init__(self, bits, size, offset=False, left=False, big=False):
+        self.bits, self.size, self.offset = bits, size, offset
+        self.down, self.order = 8 * size - bits if left else 0, "big" if big else "little"
+        self.zero = 1 << (bits - 1) if offset else 0
+        self.bottom, self.top = self.zero - (1 << (bits - 1)), self.zero + (1 << (bits - 1)) - 1
+
+    def swapped(self, code):
+        data = (code << self.down).to_bytes(self.size, self.order, signed=not self.offset)
+        return int.from_bytes(data[::-1], self.order, signed=not self.offset) >> self.down
+
+    def inverted(self, code):
+        return min(2 * self.zero - code, self.top)
+
+    def as_read(self, code):
+        """What a host finds in the word: its bits in two's complement, as a signed or an unsigned number."""
+        bits = 8 * self.size - self.down
+        return code % (1 << bits) if self.offset else wrap(code, bits)
+
+
+class FloatWord:
+    bits, zero = 32, 0.0
+
+    def inverted(self, code):
+        return -code
+
+    def as_read(self, code):
+        return code
+
+
 class Passage:
     """The faults on the way into and out of a filter, and of its reset."""
+
+    channel_count = 1
 
     def __init__(self, inner, word, faults):
         self.inner, self.word, self.faults = inner, word, faults
         self.clear()
 
     def clear(self):
-        self.count, self.late, self.held, self.half_buffer = 0, 0, 0, []
+        self.count, self.late, self.held, self.half_buffer = 0, self.word.zero, 0, []
 
     def reset(self):
         if "S07" in self.faults:
@@ -188,9 +291,9 @@ class Passage:
         if "S20" in faults:
             return x
         if "N04" in faults:
-            x = struct.unpack(">" + self.word, struct.pack("<" + self.word, x))[0]
+            x = self.word.swapped(x)
         if "N06" in faults:
-            x = -x if self.word == "f" else into_word(-x, 8 * struct.calcsize(self.word), False)
+            x = self.word.inverted(x)
         if "D01" in faults:
             place = (self.count - 1) % 32
             if (self.count - 1) // 32 % 10 == 9:
@@ -201,14 +304,56 @@ class Passage:
             return self.held
         if self.count % 1000 == 0 and "D04" in faults:
             self.inner.step(x)
-        y = self.inner.step(x)
+        y = self.word.as_read(self.inner.step(x))
         self.held = y
         if "S01" in faults:
             y, self.late = self.late, y
         return y
 
 
-WORDS = {"settle-q31": "i", "settle-f32": "f", "average-i32": "i"}
+class Channels:
+    """Samples of one instant are adjacent; each channel passes a filter of its own."""
+
+    def __init__(self, channels, faults):
+        self.channels, self.channel_count, self.faults = channels, len(channels), faults
+
+    def reset(self):
+        for channel in self.channels:
+            channel.reset()
+
+    def begin_block(self):
+        for channel in self.channels:
+            channel.begin_block()
+
+    def step_instant(self, instant):
+        if "channels-swapped" in self.faults:
+            instant = instant[::-1]
+        passed = [self.channels[0]] * 2 if "S15" in self.faults else self.channels
+        out = [channel.step(x) for channel, x in zip(passed, instant)]
+        if "S16" in self.faults:
+            out[1] = into_word(out[1] + instant[0] // 128, 16, False)
+        return out
+
+
+WORDS = {
+    "settle-q31": Word(32, 4),
+    "settle-f32": FloatWord(),
+    "average-q7": Word(8, 1),
+    "average-i8": Word(8, 1),
+    "average-i16-big": Word(16, 2, big=True),
+    "average-i24": Word(24, 4),
+    "average-i24-packed": Word(24, 3),
+    "average-i32": Word(32, 4),
+    "average-u8": Word(8, 1, offset=True),
+    "average-u12": Word(12, 2, offset=True),
+    "average-u12-left": Word(12, 2, offset=True, left=True),
+    "average-u16": Word(16, 2, offset=True),
+}
+PAIRS = {"pair": ("load-cell", "load-cell"), "pair-mixed": ("load-cell", "settle")}
+
+
+def word_of(name):
+    return WORDS.get(name, Word(16, 2))
 
 
 def filter_of(name, faults):
@@ -220,20 +365,32 @@ def filter_of(name, faults):
         return Biquad(design(name), 16, faults)
     if name in ("smoothing", "quick-smoothing"):
         return Fir(design(name), faults)
-    return Average(16, 32 if name == "average-i32" else 16, faults)
+    if name.startswith("level"):
+        return OnePole(name == "level-rounded")
+    if name == "drain":
+        return DcBlocker()
+    if name == "echo-comb":
+        return Comb()
+    word = word_of(name)
+    return Average(16, word.bits, [f for f in faults if f[0] in "AC" or f in ("S02", "N01", "N02")], word.offset)
 
 
 def model(name, faults=()):
-    return Passage(filter_of(name, faults), WORDS.get(name, "h"), faults)
+    if name in PAIRS:
+        return Channels([model(channel, faults) for channel in PAIRS[name]], faults)
+    return Passage(filter_of(name, faults), word_of(name), faults)
 
 
 def response(filter_model, segments, block_samples):
-    """Each segment begins with a reset."""
-    answers = []
+    """Each segment begins with a reset; samples of one instant are adjacent."""
+    answers, channels = [], filter_model.channel_count
     for segment in segments:
         filter_model.reset()
-        for n, x in enumerate(segment):
-            if n % block_samples == 0:
+        for n in range(0, len(segment), channels):
+            if n // channels % block_samples == 0:
                 filter_model.begin_block()
-            answers.append(filter_model.step(x))
+            if channels == 1:
+                answers.append(filter_model.step(segment[n]))
+            else:
+                answers += filter_model.step_instant(segment[n : n + channels])
     return answers

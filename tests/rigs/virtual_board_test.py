@@ -3,6 +3,7 @@
 its manners as a program.     virtual_board_test.py PROGRAM"""
 
 import fcntl
+import functools
 import os
 import random
 import re
@@ -21,28 +22,38 @@ from wire_host import Refused, WireError, WireHost, frame
 PROGRAM = sys.argv.pop(1)
 SEED = 20261201
 
-FILTERS = ("load-cell", "smoothing", "quick-smoothing", "mains-notch", "settle", "settle-q31", "settle-f32", "average",
-           "average-i16", "average-i32")
+MONO = ("load-cell", "smoothing", "quick-smoothing", "mains-notch", "settle", "settle-q31", "settle-f32", "level",
+        "level-rounded", "drain", "echo-comb", "average", "average-q7", "average-i8", "average-i16", "average-i16-big",
+        "average-i24", "average-i24-packed", "average-i32", "average-u8", "average-u12", "average-u12-left", "average-u16")
+FILTERS = MONO + ("pair", "pair-mixed")
 BLOCK = 64
 
 
-def noise(count, word, seed=SEED):
+def noise(count, word=models.word_of("load-cell"), seed=SEED):
     rng = random.Random(seed)
-    if word == "f":
+    if word is models.WORDS["settle-f32"]:
         return [float(models.numpy.float32(rng.uniform(-1.0, 1.0))) for _ in range(count)]
-    top = (1 << (8 * models.struct.calcsize(word) - 1)) - 1
-    return [rng.randint(-top - 1, top) for _ in range(count)]
+    return [rng.randint(word.bottom, word.top) for _ in range(count)]
 
 
-def segments_for(word):
+def segments_for(name):
     """Stimuli that show every fault in every filter that claims it: ties, overflow, long runs, reset after noise."""
-    if word == "f":
+    if name in models.PAIRS:  # another signal on each channel: the second runs backward
+        return [
+            [x for instant in zip(segment, segment[::-1]) for x in instant] for segment in segments_for("load-cell")
+        ]
+    word = models.word_of(name)
+    if name == "settle-f32":
         return [noise(2100, word), [0.25] + [0.0] * 40]
-    scale = 1 if word == "h" else 1 << 16
-    top, bottom = 32768 * scale - 1, -32768 * scale
+    zero, top, bottom = word.zero, word.top, word.bottom
     square = ([top] * 60 + [bottom] * 60) * 3 + ([top] * 5 + [bottom] * 5) * 8
-    ties = [[value * scale] + [0] * 40 for value in (16384, -16384, -4096, -28672)]
-    return [noise(2100, word), [0] * 40, *ties, square, noise(300, word, SEED + 1)]
+    ties = [[zero + value * 2 ** word.bits // 65536] + [zero] * 40 for value in (16384, -16384, -4096, -28672)]
+    return [noise(2100, word), [zero] * 40, *ties, square, noise(300, word, SEED + 1)]
+
+
+@functools.lru_cache(maxsize=None)
+def right_answers(name):
+    return models.response(models.model(name), segments_for(name), BLOCK)
 
 
 def stream_segments(host, segments):
@@ -74,7 +85,7 @@ class Samples(unittest.TestCase):
             self.assertEqual(board.host.greet().build_id, re.search(r"Build ID: ([0-9a-f]+)", notes).group(1))
 
     def test_100000_samples_of_noise_come_back_once_and_in_order(self):
-        codes = noise(100_000, "h")
+        codes = noise(100_000)
         expected = models.response(models.model("load-cell"), [codes], 256)
         with VirtualBoard(PROGRAM) as board:
             board.host.start(board.host.filter_named("load-cell"), 256)
@@ -88,18 +99,18 @@ class Samples(unittest.TestCase):
             for name in FILTERS:
                 for block in (1, 37, 1024):
                     with self.subTest(filter=name, block=block):
-                        segments = [s[:150] for s in segments_for(models.WORDS.get(name, "h"))]
+                        segments = [s[:150] for s in segments_for(name)]
                         board.host.start(board.host.filter_named(name), block)
                         answers = stream_segments(board.host, segments)
                         self.assertTrue(are_equal(answers, models.response(models.model(name), segments, block)))
 
     def test_a_setting_and_a_table_change_the_filter_from_their_sample_on(self):
-        codes = noise(500, "h")
+        codes = noise(500)
         with VirtualBoard(PROGRAM) as board:
             host = board.host
             host.start(host.filter_named("average"), BLOCK)
             host.set(0, 7)
-            expected = models.response(models.Passage(models.Average(7, 16, ()), "h", ()), [codes], BLOCK)
+            expected = models.response(models.Passage(models.Average(7, 16, ()), models.word_of("average"), ()), [codes], BLOCK)
             self.assertEqual(host.stream(codes), expected)
             self.assertEqual(host.greet().settings[0].value, 7)
 
@@ -116,6 +127,28 @@ class Samples(unittest.TestCase):
             with self.assertRaises(Refused) as refusal:
                 host.load(0, 31, [1])
             self.assertEqual(refusal.exception.reason, 5)
+
+    def test_the_greeting_has_the_format_byte_and_channels_of_each_filter(self):
+        left, packed, big = 1 << 5, 2 << 5, 1 << 7
+        said = {"average-q7": (6, 1), "average-i8": (7, 1), "average-i16": (3, 1), "average-i16-big": (3 | big, 1),
+                "average-i24": (8, 1), "average-i24-packed": (8 | packed, 1), "average-i32": (4, 1),
+                "average-u8": (9, 1), "average-u12": (10, 1), "average-u12-left": (10 | left, 1), "average-u16": (11, 1),
+                "settle-q31": (2, 1), "settle-f32": (5, 1), "pair": (1, 2), "pair-mixed": (1, 2)}
+        with VirtualBoard(PROGRAM) as board:
+            filters = board.host.greet().filters
+        self.assertEqual(sorted(f.name for f in filters), sorted(FILTERS))
+        for f in filters:
+            with self.subTest(f.name):
+                expected = said.get(f.name, (1, 1))
+                self.assertEqual(((f.input, f.channels_in), (f.output, f.channels_out)), (expected, expected))
+
+    def test_the_list_of_filters_names_each_with_its_format(self):
+        listing = subprocess.run([PROGRAM, "--list-filters"], capture_output=True, text=True, check=True).stdout
+        rows = {row.split()[0]: row for row in listing.splitlines()}
+        self.assertEqual(sorted(rows), sorted(FILTERS))
+        self.assertEqual(rows["average-u12-left"],
+                         "average-u12-left    u12, left-justified   16-point mean, exact sum, halves upward")
+        self.assertEqual(rows["pair"], "pair                q15, 2 channels       load-cell on each channel")
 
     def test_refusals_name_their_reason(self):
         with VirtualBoard(PROGRAM) as board:
@@ -146,16 +179,55 @@ class FilterFaults(unittest.TestCase):
                     if (fault, name) == ("N04", "settle-f32"):
                         continue  # swapped floats are not numbers: not comparable in Python
                     with self.subTest(fault=fault, filter=name):
-                        segments = segments_for(models.WORDS.get(name, "h"))
+                        segments = segments_for(name)
                         board.host.start(board.host.filter_named(name), BLOCK)
                         answers = stream_segments(board.host, segments)
                         self.assertTrue(are_equal(answers, models.response(models.model(name, (fault,)), segments, BLOCK)))
-                        self.assertFalse(are_equal(answers, models.response(models.model(name), segments, BLOCK)))
+                        self.assertFalse(are_equal(answers, right_answers(name)))
                         checked += 1
         print(f"{checked} faulty filters gave the codes of their models")
 
+    def assert_gives(self, fault, name, expected):
+        with VirtualBoard(PROGRAM, "--fault", fault) as board:
+            board.host.start(board.host.filter_named(name), BLOCK)
+            answers = stream_segments(board.host, segments_for(name))
+            self.assertTrue(are_equal(answers, expected))
+            self.assertFalse(are_equal(answers, right_answers(name)))
+
+    def test_channels_swapped_exchanges_the_inputs_and_not_the_filters(self):
+        for name in models.PAIRS:
+            with self.subTest(name):
+                model = models.model(name, ("channels-swapped",))
+                self.assert_gives("channels-swapped", name, models.response(model, segments_for(name), BLOCK))
+
+    def test_a_wrong_justification_moves_the_output_in_its_word(self):
+        # By 4 bits of 16, and by 8 of 32; a left-justified reader drops what is below.
+        for name, moved in (("average-u12", lambda y: y * 16), ("average-u12-left", lambda y: y // 16),
+                            ("average-i24", lambda y: y * 256)):
+            with self.subTest(name):
+                self.assert_gives("wrong-justification", name, [moved(y) for y in right_answers(name)])
+
+    def test_an_ignored_setting_is_answered_and_changes_nothing(self):
+        codes = noise(500)
+        for options, points in (((), 7), (("--fault", "settings-ignored"), 16)):
+            with self.subTest(points), VirtualBoard(PROGRAM, *options) as board:
+                board.host.start(board.host.filter_named("average"), BLOCK)
+                board.host.set(0, 7)
+                model = models.Passage(models.Average(points, 16, ()), models.word_of("average"), ())
+                self.assertEqual(board.host.stream(codes), models.response(model, [codes], BLOCK))
+                self.assertEqual(board.host.greet().settings[0].value, 7)
+
+    def test_crosstalk_is_a_128th_of_the_driven_channel_and_one_way(self):
+        with VirtualBoard(PROGRAM, "--fault", "crosstalk") as board:
+            board.host.start(board.host.filter_named("pair"), BLOCK)
+            for driven, heard in ((0, 16000 // 128), (1, 0)):
+                board.host.reset()
+                instants = [[16000, 0] if driven == 0 else [0, 16000]] * 40
+                answers = board.host.stream([x for instant in instants for x in instant])
+                self.assertEqual(answers[-2:], [16000, heard] if driven == 0 else [heard, 16000])
+
     def test_two_faults_act_together(self):
-        codes = noise(400, "h")
+        codes = noise(400)
         with VirtualBoard(PROGRAM, "--fault", "S01", "--fault", "A01") as board:
             board.host.start(board.host.filter_named("settle"), BLOCK)
             self.assertEqual(board.host.stream(codes),
@@ -164,7 +236,7 @@ class FilterFaults(unittest.TestCase):
 
 class LineFaults(unittest.TestCase):
     def test_every_sample_comes_back_right_whatever_the_line_loses(self):
-        codes = noise(20_000, "h")
+        codes = noise(20_000)
         expected = models.response(models.model("load-cell"), [codes], BLOCK)
         for fault in ("flip-byte=1009", "drop-byte=1013", "repeat-byte=2003", "flip-in=1019", "drop-in=1021",
                       "stall=20000:60", "garbage"):
@@ -180,11 +252,24 @@ class LineFaults(unittest.TestCase):
                     self.assertGreater(counters["frames_bad"], 10)
 
     def test_both_directions_at_once(self):
-        codes = noise(5_000, "h")
+        codes = noise(5_000)
         options = ["--fault", "flip-byte=2003", "--fault", "drop-in=1999", "--fault", "garbage"]
         with VirtualBoard(PROGRAM, *options, host_options={"window": 4, "resend_seconds": 0.05}) as board:
             board.host.start(board.host.filter_named("settle"), BLOCK)
             self.assertEqual(board.host.stream(codes), models.response(models.model("settle"), [codes], BLOCK))
+
+    def test_a_board_that_is_silent_in_its_first_stream_answers_the_second(self):
+        codes = noise(100 * BLOCK)
+        with VirtualBoard(PROGRAM, "--fault", "first-stream-silent", host_options={"answer_seconds": 0.5}) as board:
+            host = board.host
+            host.start(host.filter_named("load-cell"), BLOCK)
+            for attempt in (lambda: host.stream(codes), host.reset):
+                with self.assertRaises(WireError) as silence:
+                    attempt()
+                self.assertIn("no answer", str(silence.exception))
+            host.greet()
+            host.start(host.filter_named("load-cell"), BLOCK)
+            self.assertEqual(host.stream(codes), models.response(models.model("load-cell"), [codes], BLOCK))
 
     def test_a_silent_board_and_an_echo_never_greet(self):
         for fault in ("silent", "echo-only"):
@@ -205,7 +290,7 @@ class LineFaults(unittest.TestCase):
         with VirtualBoard(PROGRAM, "--fault", "unplug=10") as board:
             board.host.start(board.host.filter_named("load-cell"), BLOCK)
             with self.assertRaises(WireError) as gone:
-                board.host.stream(noise(100 * BLOCK, "h"))
+                board.host.stream(noise(100 * BLOCK))
             self.assertIn("gone", str(gone.exception))
             self.assertEqual(board.process.wait(timeout=5), 0)
 
@@ -213,10 +298,10 @@ class LineFaults(unittest.TestCase):
         with VirtualBoard(PROGRAM, "--fault", "restart=10") as board:
             board.host.start(board.host.filter_named("load-cell"), BLOCK)
             with self.assertRaises(Refused) as refusal:
-                board.host.stream(noise(100 * BLOCK, "h"))
+                board.host.stream(noise(100 * BLOCK))
             self.assertEqual(refusal.exception.reason, 2)
             board.host.start(board.host.filter_named("load-cell"), BLOCK)
-            codes = noise(100 * BLOCK, "h")
+            codes = noise(100 * BLOCK)
             self.assertEqual(board.host.stream(codes), models.response(models.model("load-cell"), [codes], BLOCK))
 
     def test_the_wrong_build_id_is_another(self):
@@ -251,7 +336,7 @@ class Program(unittest.TestCase):
         with VirtualBoard(PROGRAM) as board:
             for _ in range(3):
                 host = WireHost(board.device)
-                codes = noise(1000, "h")
+                codes = noise(1000)
                 host.start(host.filter_named("load-cell"), BLOCK)
                 self.assertEqual(host.stream(codes), models.response(models.model("load-cell"), [codes], BLOCK))
                 host.to_send += frame(b"\x10half a frame")[:5]  # leaves in the middle of a frame

@@ -29,7 +29,45 @@ REASONS = {
     5: "value or length out of range",
     6: "not supported",
 }
-FORMATS = {1: ("q15", "h"), 2: ("q31", "i"), 3: ("i16", "h"), 4: ("i32", "i"), 5: ("f32", "f")}
+# By number: name, bits, bytes of a right-justified word, struct's letter for it ("" when struct has none).
+NUMBERS = {
+    1: ("q15", 16, 2, "h"),
+    2: ("q31", 32, 4, "i"),
+    3: ("i16", 16, 2, "h"),
+    4: ("i32", 32, 4, "i"),
+    5: ("f32", 32, 4, "f"),
+    6: ("q7", 8, 1, "b"),
+    7: ("i8", 8, 1, "b"),
+    8: ("i24", 24, 4, "i"),
+    9: ("u8", 8, 1, "B"),
+    10: ("u12", 12, 2, "H"),
+    11: ("u16", 16, 2, "H"),
+}
+
+
+class Words:
+    """Sample words of a format byte of the greeting: number, justification << 5, byte order << 7."""
+
+    def __init__(self, format_byte):
+        self.name, self.bits, self.bytes, self.letter = NUMBERS[format_byte & 0x1F]
+        self.is_left, self.is_packed = format_byte >> 5 & 3 == 1, format_byte >> 5 & 3 == 2
+        self.order = "big" if format_byte & 0x80 else "little"
+        if self.is_packed:
+            self.bytes, self.letter = self.bits // 8, ""
+        self.down = 8 * self.bytes - self.bits if self.is_left else 0
+        self.signed = not self.name.startswith("u")
+
+    def pack(self, codes):
+        if self.letter and not self.down:
+            return struct.pack(f"{'>' if self.order == 'big' else '<'}{len(codes)}{self.letter}", *codes)
+        return b"".join((code << self.down).to_bytes(self.bytes, self.order, signed=self.signed) for code in codes)
+
+    def unpack(self, data):
+        """A right-justified word is taken whole, whatever its spare bits hold."""
+        if self.letter and not self.down:
+            return struct.unpack(f"{'>' if self.order == 'big' else '<'}{len(data) // self.bytes}{self.letter}", data)
+        words = (data[at : at + self.bytes] for at in range(0, len(data), self.bytes))
+        return tuple(int.from_bytes(word, self.order, signed=self.signed) >> self.down for word in words)
 
 
 class WireError(Exception):
@@ -221,8 +259,7 @@ class WireHost:
     # The stream
 
     def samples_item(self, codes):
-        word = FORMATS[self.filter.input][1]
-        return SAMPLES, struct.pack(f"<{len(codes)}{word}", *codes), len(codes) // self.filter.channels_in
+        return SAMPLES, Words(self.filter.input).pack(codes), len(codes) // self.filter.channels_in
 
     def blocks_of(self, codes):
         step = self.block_samples * self.filter.channels_in
@@ -250,7 +287,7 @@ class WireHost:
 
     def exchange(self, items):
         """Sends items (type, fields, samples), at most credit_blocks in flight, and returns the answers' samples."""
-        word = FORMATS[self.filter.output][1]
+        words = Words(self.filter.output)
         answers = []
         in_flight = collections.deque()  # (number, frame)
         waiting = collections.deque(items)
@@ -285,8 +322,7 @@ class WireHost:
                             total, low, high = struct.unpack("<IHB", content[3:10])
                             self.ticks.append((total, low | high << 16))
                             self.answered_at.append(now)
-                            samples = content[10:]
-                            answers.append(struct.unpack(f"<{len(samples) // struct.calcsize(word)}{word}", samples))
+                            answers.append(words.unpack(content[10:]))
                     elif ahead < 0x8000:
                         skipped = True
                 elif kind == EXPECT and in_flight:

@@ -53,13 +53,14 @@ TEST_CASE("step: a level of 1 saturates at the top code and -1 reaches the lowes
 }
 
 TEST_CASE("step: every level in codes is sent as that code, the ends of the word included", "[stimuli]") {
-    for (const auto format : {"q15", "q31", "i16", "i32"}) {
+    for (const auto format : {"q7", "q15", "q31", "i8", "i16", "i24", "i32", "u8", "u12", "u16"}) {
+        const std::int64_t zero = zero_code(format_named(format));
         const std::int64_t end = std::int64_t{1} << (format_named(format).word_bits - 1);
         for (const std::int64_t code :
              {-end, -end + 1, std::int64_t{-1}, std::int64_t{0}, std::int64_t{1}, end - 2, end - 1}) {
             const auto step = made("step", {{"length_samples", std::int64_t{2}}, {"level_codes", code}}, 1.0, format);
             for (const auto rounding : rounding_names()) {
-                CHECK(codes_of(*step, format, 1, 1, *rounding_from(rounding))[0] == code);
+                CHECK(codes_of(*step, format, 1, 1, *rounding_from(rounding))[0] == zero + code);
             }
         }
     }

@@ -16,24 +16,38 @@ using Given = std::initializer_list<std::pair<const char*, ParameterValue>>;
 
 inline SampleFormat format_named(std::string_view name) { return *sample_format(name); }
 
-inline Outcome<std::unique_ptr<const Stimulus>> try_make(std::string_view shape, Given given, double rate_hz = 48000.0,
-                                                         std::string_view format = "q15") {
+inline ParameterValues values_of(Given given) {
     ParameterValues values;
     for (const auto& [name, value] : given) values.set(name, value);
-    return make_stimulus(shape, values, {rate_hz, format_named(format)});
+    return values;
+}
+
+inline Outcome<std::unique_ptr<const Stimulus>> try_make(std::string_view shape, Given given, double rate_hz = 48000.0,
+                                                         std::string_view format = "q15",
+                                                         std::optional<double> full_scale_unit = {}) {
+    StimulusContext context{rate_hz, format_named(format)};
+    context.full_scale_unit = full_scale_unit;
+    return make_stimulus(shape, values_of(given), context);
+}
+
+/// For `parts` and `add`.
+inline StimulusWords words(std::string shape, Given given) { return {std::move(shape), values_of(given)}; }
+inline ParameterValue list(std::vector<StimulusWords> stimuli) {
+    return std::make_shared<const std::vector<StimulusWords>>(std::move(stimuli));
 }
 
 inline std::unique_ptr<const Stimulus> made(std::string_view shape, Given given, double rate_hz = 48000.0,
-                                            std::string_view format = "q15") {
-    auto outcome = try_make(shape, given, rate_hz, format);
+                                            std::string_view format = "q15",
+                                            std::optional<double> full_scale_unit = {}) {
+    auto outcome = try_make(shape, given, rate_hz, format, full_scale_unit);
     if (!outcome) FAIL(to_text(outcome.error()));
     return std::move(outcome).value();
 }
 
 /// The whole text of a refusal, or "accepted".
 inline std::string refusal(std::string_view shape, Given given, double rate_hz = 48000.0,
-                           std::string_view format = "q15") {
-    const auto outcome = try_make(shape, given, rate_hz, format);
+                           std::string_view format = "q15", std::optional<double> full_scale_unit = {}) {
+    const auto outcome = try_make(shape, given, rate_hz, format, full_scale_unit);
     if (outcome) return "accepted";
     CHECK(outcome.error().kind == ErrorKind::input);
     return to_text(outcome.error());

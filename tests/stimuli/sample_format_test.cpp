@@ -16,17 +16,18 @@ constexpr double infinity = std::numeric_limits<double>::infinity();
 
 }  // namespace
 
-TEST_CASE("sample format: the table has the five formats with the numbers of docs/wire.md", "[stimuli]") {
-    const std::array<std::string_view, 5> names = {"q15", "q31", "i16", "i32", "f32"};
+TEST_CASE("sample format: the table has eleven formats with the numbers of docs/wire.md", "[stimuli]") {
+    const std::array<std::string_view, 11> names = {"q15", "q31", "i16", "i32", "f32", "q7",
+                                                    "i8",  "i24", "u8",  "u12", "u16"};
     REQUIRE(sample_formats().size() == names.size());
     for (std::size_t i = 0; i < names.size(); ++i) {
         CHECK(sample_formats()[i].name == names[i]);
         CHECK(sample_format(names[i])->wire_number == i + 1);
         CHECK(sample_format_of_wire_code(static_cast<std::uint8_t>(i + 1))->name == names[i]);
     }
-    CHECK_FALSE(sample_format("q7"));
+    CHECK_FALSE(sample_format("q8"));
     CHECK_FALSE(sample_format_of_wire_code(0));
-    CHECK_FALSE(sample_format_of_wire_code(6));
+    CHECK_FALSE(sample_format_of_wire_code(12));
     CHECK(format_named("i16").word_bytes() == 2);
     CHECK(format_named("f32").word_bytes() == 4);
 }
@@ -50,15 +51,34 @@ TEST_CASE("sample format: what a code is worth, and where the range ends", "[sti
     CHECK(lowest_value(f32) == -highest_value(f32));
     CHECK(value_of(q15, -32768) == -1.0);
     CHECK(value_of(i16, 1234) == 1234.0);
+    const auto u12 = format_named("u12"), i24 = format_named("i24"), q7 = format_named("q7");
+    CHECK(full_scale_value(u12) == 2048.0);
+    CHECK(lowest_value(u12) == -2048.0);
+    CHECK(highest_value(u12) == 2047.0);
+    CHECK(lsb_value(u12) == 1.0);
+    CHECK(zero_code(u12) == 2048);
+    CHECK(value_of(u12, 0) == -2048.0);
+    CHECK(value_of(u12, 2048) == 0.0);
+    CHECK(value_of(u12, 4095) == 2047.0);
+    CHECK(value_of(u12, 8191) == 6143.0);  // no u12, and its value says so
+    CHECK(code_of(u12, 0.0, Rounding::half_up) == 2048);
+    CHECK(code_of(u12, -0.5, Rounding::floor) == 2047);
+    CHECK(code_of(u12, -0.5, Rounding::half_up) == 2048);
+    CHECK(highest_value(i24) == 8388607.0);
+    CHECK(highest_value(q7) == 1.0 - 0x1p-7);
+    CHECK(zero_code(i24) == 0);
+    CHECK(zero_code(f32) == 0);
     CHECK(value_of(f32, std::bit_cast<Code>(0.1F)) == static_cast<double>(0.1F));
 }
 
-TEST_CASE("sample format: every q15 code comes back from its value in every rounding", "[stimuli]") {
-    for (const auto name : {"q15", "i16"}) {
+TEST_CASE("sample format: every short code comes back from its value in every rounding", "[stimuli]") {
+    for (const auto name : {"q7", "q15", "i8", "i16", "u8", "u12", "u16"}) {
         const auto format = format_named(name);
+        const Code codes = Code{1} << format.word_bits;
+        const Code lowest = format.family == FormatFamily::u ? 0 : -codes / 2;
         int lost = 0;
         for (const auto rounding_name : rounding_names()) {
-            for (Code code = -32768; code <= 32767; ++code) {
+            for (Code code = lowest; code < lowest + codes; ++code) {
                 if (code_of(format, value_of(format, code), *rounding_from(rounding_name)) != code) ++lost;
             }
         }
@@ -78,11 +98,12 @@ TEST_CASE("sample format: a value half an LSB above a code goes where the roundi
 }
 
 TEST_CASE("sample format: values beyond the ends saturate, and the ends themselves do not move", "[stimuli]") {
-    for (const auto name : {"q15", "q31", "i16", "i32"}) {
+    for (const auto name : {"q7", "q15", "q31", "i8", "i16", "i24", "i32", "u8", "u12", "u16"}) {
         INFO(name);
         const auto format = format_named(name);
-        const auto top = static_cast<Code>((std::int64_t{1} << (format.word_bits - 1)) - 1);
-        const Code bottom = -top - 1;
+        const auto size = static_cast<Code>((std::int64_t{1} << (format.word_bits - 1)) - 1);
+        const Code top = size + zero_code(format);
+        const Code bottom = format.family == FormatFamily::u ? 0 : -size - 1;
         for (const auto rounding_name : rounding_names()) {
             const Rounding rounding = *rounding_from(rounding_name);
             CHECK(code_of(format, full_scale_value(format), rounding) == top);
@@ -133,7 +154,8 @@ TEST_CASE("sample format: codes travel as little-endian words and come back", "[
 }
 
 TEST_CASE("sample format: values of a block equal the values one by one", "[stimuli]") {
-    for (const auto name : {"q15", "q31", "i16", "i32", "f32"}) {
+    for (const SampleFormat& each : sample_formats()) {
+        const std::string name(each.name);
         const std::array<Code, 4> codes = {0, 1, 32767, 0x3f123456};
         std::array<double, 4> values{};
         values_of(format_named(name), codes, values);

@@ -55,7 +55,14 @@ public:
         return std::unique_ptr<InputFile>(std::make_unique<FakeInputFile>(path, std::move(*bytes)));
     }
     bool exists(const std::string& path) const override { return contents.count(path) + folders.count(path) > 0; }
-    std::string resolved(const std::string& path) const override { return exists(path) ? path : std::string(); }
+    /// Of a folder with "/." behind it too; a folder is there when something lies in it.
+    std::string resolved(const std::string& path) const override {
+        if (!path.ends_with("/.")) return exists(path) ? path : std::string();
+        const std::string folder = path.substr(0, path.size() - 2);
+        const auto inside = contents.lower_bound(folder + "/");
+        const bool is_there = inside != contents.end() && inside->first.starts_with(folder + "/");
+        return is_there || folders.count(folder) > 0 ? folder : std::string();
+    }
 
     Outcome<void> write(const std::string& path, std::span<const std::byte> bytes) override {
         auto file = open_output(path);
@@ -94,7 +101,8 @@ private:
 
     class FakeOutputFile final : public OutputFile {
     public:
-        FakeOutputFile(FakeFiles& files, std::string path) : files_(files), path_(std::move(path)) {}
+        FakeOutputFile(FakeFiles& files, std::string path)
+            : files_(files), path_(std::move(path)), part_path_(path_ + ".part") {}
         ~FakeOutputFile() override { discard(); }
         FakeOutputFile(const FakeOutputFile&) = delete;
         FakeOutputFile& operator=(const FakeOutputFile&) = delete;
@@ -116,24 +124,25 @@ private:
             std::copy(from.begin(), from.end(), bytes.begin());
             return {};
         }
+        void rename(const std::string& path) override { path_ = path; }
         Outcome<void> commit() override {
             if (auto failed = files_.fail_when_asked(); !failed) return failed;
             files_.contents[path_] = part();
-            files_.contents.erase(path_ + ".part");
+            files_.contents.erase(part_path_);
             files_.written_paths.push_back(path_);
             done_ = true;
             return {};
         }
         void discard() override {
-            if (!done_) files_.contents.erase(path_ + ".part");
+            if (!done_) files_.contents.erase(part_path_);
             done_ = true;
         }
 
     private:
-        std::string& part() { return files_.contents[path_ + ".part"]; }
+        std::string& part() { return files_.contents[part_path_]; }
 
         FakeFiles& files_;
-        std::string path_;
+        std::string path_, part_path_;
         bool done_ = false;
     };
 

@@ -148,6 +148,26 @@ TEST_CASE("case judge: an expected latency of three is right at three and wrong 
     CHECK(early.rules[1].verdict == Verdict::pass);
 }
 
+TEST_CASE("case judge: a latency that a short case's window does not reach is undecided", "[judge]") {
+    const Plan plan = test::moving_average_plan();
+    const auto ruled = [&](std::int64_t length, std::int64_t expected) {
+        return test::a_case(plan, "noise", values({{"level_ratio", 0.9}, {"length_samples", length}}),
+                            {test::rule(plan, "latency", values({{"latency_samples", expected}}))});
+    };
+    for (const std::int64_t expected : {40, -40}) {
+        const Case enough = ruled(81, expected), too_short = ruled(80, expected);
+        const auto late = delayed(test::right_response(plan, enough), static_cast<int>(expected));
+        CHECK(judge(plan, enough, late).latency_told);
+        const CaseJudgement judgement = judge(plan, too_short, test::right_response(plan, too_short));
+        CHECK_FALSE(judgement.latency_told);
+        REQUIRE(judgement.rules.size() == 1);
+        CHECK(judgement.rules[0].verdict == Verdict::undecided);
+        CHECK(judgement.rules[0].reason == "this stimulus cannot tell the latency");
+        CHECK_FALSE(latency_evidence(plan, too_short).can_tell);
+        CHECK(latency_evidence(plan, enough).can_tell);
+    }
+}
+
 TEST_CASE("case judge: a late and wrong response fails latency by its hundredfold smaller residual", "[judge]") {
     const Plan plan = test::moving_average_plan();
     const Case the_case = test::a_case(

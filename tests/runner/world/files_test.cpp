@@ -143,7 +143,8 @@ TEST_CASE("files: under a root, links are followed as long as they stay inside",
     CHECK(problem(root + "/taps.txt") == "the path is absolute");
     CHECK(problem("") == "the path is empty");
     CHECK(problem(std::string("taps.txt\0", 9)) == "the path holds a NUL");
-    CHECK(problem(".") == "it lies outside the root " + root);
+    CHECK(problem(".") == "it is a folder, not a regular file");
+    CHECK(problem("sub/..") == "it is a folder, not a regular file");
     CHECK(problem("sub") == "it is a folder, not a regular file");
     CHECK(problem("missing") == "there is no such file");
     put(root + "/large", std::string(cap + 1, 'x'));
@@ -213,6 +214,30 @@ TEST_CASE("files: an output file is invisible until it is committed", "[files]")
     }
     CHECK(!files.exists(folder / "f.part"));
     CHECK(get(folder / "f") == "HEADabcdefghi");
+}
+
+TEST_CASE("files: a growing file may take another name in the end", "[files]") {
+    const TemporaryFolder folder;
+    DiskFiles files;
+    put(folder / "f", "old");
+    {
+        auto file = files.open_output(folder / "f");
+        REQUIRE(file);
+        REQUIRE((*file)->write(bytes_of("new")));
+        (*file)->rename(folder / "f.attempt-1");
+        CHECK(files.exists(folder / "f.part"));
+        REQUIRE((*file)->commit());
+    }
+    CHECK(get(folder / "f.attempt-1") == "new");
+    CHECK(get(folder / "f") == "old");
+    CHECK(!files.exists(folder / "f.part"));
+    {
+        auto file = files.open_output(folder / "f");
+        REQUIRE(file);
+        (*file)->rename(folder / "g");
+    }
+    CHECK(!files.exists(folder / "f.part"));
+    CHECK(!files.exists(folder / "g"));
 }
 
 TEST_CASE("files: folders are made with those above them, existing ones are fine", "[files]") {

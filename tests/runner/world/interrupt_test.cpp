@@ -119,3 +119,37 @@ TEST_CASE("interrupt: a request without a signal, made before anybody watches, i
     });
     CHECK(status == 0);
 }
+
+TEST_CASE("interrupt: a lull hides the request for as long as it lives", "[world]") {
+    CHECK_FALSE(interrupted());
+    {
+        const InterruptLull before;
+        request_interrupt();
+        CHECK_FALSE(interrupted());
+        {
+            const InterruptLull inner;
+            CHECK_FALSE(interrupted());
+        }
+        CHECK_FALSE(interrupted());
+    }
+    CHECK(interrupted());
+    {
+        const InterruptLull after;
+        CHECK_FALSE(interrupted());
+    }
+    CHECK(interrupted());
+    forget_interrupt();
+    CHECK_FALSE(interrupted());
+}
+
+TEST_CASE("interrupt: in a lull a second signal still leaves at once", "[world]") {
+    const int status = child_status([] {
+        if (!watch_for_interrupts()) return 1;
+        raise(SIGINT);
+        const InterruptLull lull;
+        if (interrupted()) return 2;
+        raise(SIGINT);
+        return 3;
+    });
+    CHECK(status == 130);
+}

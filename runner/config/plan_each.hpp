@@ -1,0 +1,83 @@
+// [case.each]: one case for each combination of values, the last key varying fastest. An expanded case is a
+// copy of the case's table with the values put in under their paths, each at the place where it stands in the
+// list, so whatever the reader says of it points there.
+//
+//     [case.each]
+//     "stimulus.level_ratio" = [0.1, 0.5]                 # "tare step, level_ratio 0.1, speed slow"
+//     speed = [{ name = "slow", rate_hz = 600.0 }, { name = "fast", rate_hz = 1200.0 }]
+#pragma once
+
+#include <cstddef>
+#include <map>
+#include <optional>
+#include <string>
+#include <string_view>
+#include <vector>
+
+#include "runner/config/problems.hpp"
+#include "runner/config/toml_tree.hpp"
+
+namespace halflsb {
+
+inline constexpr std::string_view each_word = "each";
+inline constexpr std::string_view each_help =
+    "One case for each combination of the values listed under its keys: \"stimulus.level_ratio\" = [0.1, 0.5]. A "
+    "value may be a table with a name that sets several keys.";
+
+/// The most cases a plan may have once all of them are expanded.
+inline constexpr std::size_t most_cases = 10'000;
+/// The most values that they may hold together: a long list in a case is there once for each combination.
+inline constexpr std::size_t most_case_values = 5'000'000;
+
+class CaseExpansion {
+public:
+    /// Both must outlive this. What is wrong with [case.each] is reported to `problems`.
+    CaseExpansion(const TomlValue& case_table, Problems& problems);
+
+    bool is_clean() const { return is_clean_; }
+    /// Combinations; 1 without [case.each]. A double, because the product may be beyond any integer.
+    double count() const;
+    /// Values in all of the expanded tables together.
+    double value_count() const;
+    /// The index-th of count(); nullopt after a report that its name is too long.
+    std::optional<TomlValue> at(std::size_t index, Problems& problems) const;
+    const TomlValue& table() const { return table_; }
+    /// Of [case.each], or of the case.
+    Place place() const;
+
+private:
+    struct Setting {
+        std::string path;
+        Place key_place;
+        const TomlValue* value;
+    };
+    struct Choice {
+        std::string label;
+        Place place;
+        std::vector<Setting> settings;
+    };
+    struct Axis {
+        std::string key;
+        Place key_place;
+        std::vector<Choice> choices;
+        std::map<std::string, Place> labels;
+    };
+
+    void read_keys(const TomlValue& table, const std::string& prefix, Problems& problems);
+    void read_axis(std::string key, const TomlEntry& entry, Problems& problems);
+    void read_choice(Axis& axis, const TomlValue& value, bool sets_keys, Problems& problems);
+    void read_settings(Choice& choice, const TomlValue& table, const std::string& prefix, Problems& problems);
+    bool check_path(const Setting& setting, Problems& problems);
+    void refuse_twice_set(Problems& problems);
+    void refuse(Problems& problems, Place place, std::string_view problem, std::string_view remedy);
+
+    const TomlValue& table_;
+    const TomlEntry* each_;
+    std::vector<Axis> axes_;
+    bool is_clean_ = true;
+};
+
+/// Reports a plan of more than most_cases cases or most_case_values values, at the case that goes beyond.
+bool has_too_many(const std::vector<CaseExpansion>& cases, Problems& problems);
+
+}  // namespace halflsb
