@@ -92,7 +92,7 @@ private:
 };
 
 StimulusOutcome make_chirp(const Recipe& recipe, const ParameterValues& values, const StimulusContext& context) {
-    auto placement = placement_of(recipe, values, context, LevelSign::positive);
+    auto placement = placement_of(recipe, values, context);
     if (!placement) return placement.error();
     const double from_hz = values.number(recipe, "from_hz").value_or(0.0);
     const double to_hz = values.number(recipe, "to_hz").value_or(0.0);
@@ -125,14 +125,16 @@ Shape chirp_shape() {
          .type = ParameterType::real,
          .unit = "Hz",
          .minimum = 0.0,
+         .above_minimum = true,
          .required = true,
-         .help = "Frequency at at_samples, above 0 and not above Nyquist."},
+         .help = "Frequency at at_samples, not above Nyquist."},
         {.name = "to_hz",
          .type = ParameterType::real,
          .unit = "Hz",
          .minimum = 0.0,
+         .above_minimum = true,
          .required = true,
-         .help = "Frequency at the end, above 0, not above Nyquist and other than from_hz."},
+         .help = "Frequency at the end, not above Nyquist and other than from_hz."},
     };
     const auto placement = placement_parameters(LevelSign::positive, 0.5, "Peak of the sine.");
     parameters.insert(parameters.end(), placement.begin(), placement.end());

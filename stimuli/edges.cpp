@@ -1,5 +1,5 @@
-// Step and impulse: a level from at_samples on, or in that one sample. Their spectrum is empty: they
-// are transients, with too little power in any one band to estimate a response from.
+// Step and impulse: a level from at_samples on, or in that one sample; and silence. Their spectrum is
+// empty: they are transients, with too little power in any one band to estimate a response from.
 #include <algorithm>
 
 #include "stimuli/shape.hpp"
@@ -34,9 +34,26 @@ private:
     }
 };
 
+class Silence final : public PlacedStimulus {
+public:
+    using PlacedStimulus::PlacedStimulus;
+    Spectrum spectrum() const override { return {}; }
+
+private:
+    void fill_own(std::int64_t, std::span<double> ratios) const override {
+        std::fill(ratios.begin(), ratios.end(), 0.0);
+    }
+};
+
+StimulusOutcome make_silence(const Recipe& recipe, const ParameterValues& values, const StimulusContext& context) {
+    auto placement = span_of(recipe, values, context);
+    if (!placement) return placement.error();
+    return std::unique_ptr<const Stimulus>(std::make_unique<Silence>(*placement));
+}
+
 template <class Edge>
 StimulusOutcome make_edge(const Recipe& recipe, const ParameterValues& values, const StimulusContext& context) {
-    auto placement = placement_of(recipe, values, context, LevelSign::any);
+    auto placement = placement_of(recipe, values, context);
     if (!placement) return placement.error();
     return std::unique_ptr<const Stimulus>(std::make_unique<Edge>(*placement));
 }
@@ -55,6 +72,13 @@ Shape impulse_shape() {
              .help = "One sample at at_samples, silence before and after it.",
              .parameters = placement_parameters(LevelSign::any, 0.5, edge_level_help)},
             make_edge<Impulse>};
+}
+
+Shape silence_shape() {
+    return {{.name = "silence",
+             .help = "The code of zero all the time: a gap between the parts of a sequence, or for what is left alone.",
+             .parameters = {length_parameter()}},
+            make_silence};
 }
 
 }  // namespace halflsb

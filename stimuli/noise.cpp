@@ -54,7 +54,7 @@ private:
 };
 
 StimulusOutcome make_noise(const Recipe& recipe, const ParameterValues& values, const StimulusContext& context) {
-    auto placement = placement_of(recipe, values, context, LevelSign::positive);
+    auto placement = placement_of(recipe, values, context);
     if (!placement) return placement.error();
     const std::uint64_t seed = seed_of(recipe, values);
     if (values.text(recipe, "distribution") == "normal") {

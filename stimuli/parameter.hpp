@@ -38,10 +38,12 @@ struct Parameter {
     std::string_view unit = {};  ///< for messages and docs: "Hz", "samples", "dB", "LSB", "of full scale", ""
     double minimum = -no_limit;
     double maximum = no_limit;
+    bool above_minimum = false;  ///< the minimum itself is not taken: a level of 0 would be silence
     bool required = false;
     std::optional<double> default_value = {};    ///< of a number that may be left out
     std::vector<std::string_view> choices = {};  ///< of a choice, the first is the default unless required
     std::string_view help = {};                  ///< one sentence
+    bool optional_choice = false;                ///< a choice without a default: left out, it says nothing
 };
 
 /// A stimulus shape, filter kind or rule kind with its parameters, in the order docs show them.

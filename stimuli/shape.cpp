@@ -6,44 +6,41 @@
 
 namespace halflsb {
 
-std::vector<Parameter> placement_parameters(LevelSign sign, double default_level_ratio, std::string_view level_help) {
-    const bool any = sign == LevelSign::any;
-    const auto longest = static_cast<double>(longest_stimulus_samples);
-    return {
-        {.name = "length_samples",
-         .type = ParameterType::integer,
-         .unit = "samples",
-         .minimum = 1.0,
-         .maximum = longest,
-         .required = true,
-         .help = "Number of samples that are sent."},
-        {.name = "at_samples",
-         .type = ParameterType::integer,
-         .unit = "samples",
-         .minimum = 0.0,
-         .maximum = longest - 1.0,
-         .default_value = 0.0,
-         .help = "Index of the first sample of the signal; the samples before it are silent."},
-        {.name = "level_ratio",
-         .type = ParameterType::real,
-         .unit = "of full scale",
-         .minimum = any ? -1.0 : 0.0,
-         .maximum = 1.0,
-         .default_value = default_level_ratio,
-         .help = level_help},
-        {.name = "level_codes",
-         .type = ParameterType::integer,
-         .unit = "LSB",
-         .minimum = any ? -2147483648.0 : 1.0,
-         .maximum = 2147483647.0,
-         .help = "The level in codes of the input format, in place of level_ratio; not for f32."},
-    };
+Parameter length_parameter() {
+    return {.name = "length_samples",
+            .type = ParameterType::integer,
+            .unit = "samples",
+            .minimum = 1.0,
+            .maximum = static_cast<double>(longest_stimulus_samples),
+            .required = true,
+            .help = "Number of samples that are sent; a stimulus in add may leave it out."};
 }
 
-Outcome<Placement> placement_of(const Recipe& recipe, const ParameterValues& values, const StimulusContext& context,
-                                LevelSign sign) {
+Parameter start_parameter() {
+    return {.name = "at_samples",
+            .type = ParameterType::integer,
+            .unit = "samples",
+            .minimum = 0.0,
+            .maximum = static_cast<double>(longest_stimulus_samples) - 1.0,
+            .default_value = 0.0,
+            .help = "Index of the first sample of the signal; the samples before it are silent."};
+}
+
+std::vector<Parameter> placement_parameters(LevelSign sign, double default_level_ratio, std::string_view level_help) {
+    std::vector<Parameter> parameters = {length_parameter(), start_parameter()};
+    const auto level = level_parameters("level", sign, default_level_ratio, level_help);
+    parameters.insert(parameters.end(), level.begin(), level.end());
+    return parameters;
+}
+
+Outcome<Placement> span_of(const Recipe& recipe, const ParameterValues& values, const StimulusContext& context) {
     Placement placement;
-    placement.length_samples = values.integer(recipe, "length_samples").value_or(1);
+    const auto length = values.integer(recipe, "length_samples");
+    if (!length && !context.default_length_samples) {
+        return refused("length_samples", "is missing, and \"" + std::string(recipe.name) + "\" needs it",
+                       "Give a whole number.");
+    }
+    placement.length_samples = length ? *length : *context.default_length_samples;
     placement.at_samples = values.integer(recipe, "at_samples").value_or(0);
     if (placement.at_samples >= placement.length_samples) {
         return refused("at_samples",
@@ -51,28 +48,15 @@ Outcome<Placement> placement_of(const Recipe& recipe, const ParameterValues& val
                            std::to_string(placement.length_samples) + ", so nothing would happen",
                        "Start earlier, or make the stimulus longer.");
     }
-    if (!values.has("level_codes")) {
-        placement.level_ratio = values.number(recipe, "level_ratio").value_or(0.0);
-        if (sign == LevelSign::positive && placement.level_ratio == 0.0) {
-            return refused("level_ratio", "0 is silence", "Give a level above 0.");
-        }
-        return placement;
-    }
-    if (values.has("level_ratio")) {
-        return refused("level_codes", "level_ratio is given too", "Keep one of the two.");
-    }
-    if (!context.input.has_lsb()) {
-        return refused("level_codes", "format " + std::string(context.input.name) + " has no LSB",
-                       "Give level_ratio instead.");
-    }
-    const std::int64_t codes = values.integer(recipe, "level_codes").value_or(0);
-    const std::int64_t end = std::int64_t{1} << (context.input.word_bits - 1);
-    if (codes < -end || codes >= end) {
-        return refused("level_codes", std::to_string(codes) + " is not a code of " + std::string(context.input.name),
-                       "Give a whole number from " + std::to_string(sign == LevelSign::positive ? 1 : -end) + " to " +
-                           std::to_string(end - 1) + ".");
-    }
-    placement.level_ratio = static_cast<double>(codes) / static_cast<double>(end);
+    return placement;
+}
+
+Outcome<Placement> placement_of(const Recipe& recipe, const ParameterValues& values, const StimulusContext& context) {
+    auto placement = span_of(recipe, values, context);
+    if (!placement) return placement;
+    const auto level = level_of("level", recipe, values, context);
+    if (!level) return level.error();
+    placement->level_ratio = *level;
     return placement;
 }
 
@@ -114,6 +98,11 @@ void PlacedStimulus::fill(std::int64_t first_index, std::span<double> ratios) co
 
 Error refused(std::string_view parameter, std::string problem, std::string remedy) {
     return Error{ErrorKind::input, std::string(parameter), std::move(problem), std::move(remedy)};
+}
+
+Error inside(std::string_view list, std::size_t index, Error error) {
+    error.place = std::string(list) + "[" + std::to_string(index + 1) + "]." + error.place;
+    return error;
 }
 
 std::optional<Error> frequency_error(std::string_view parameter, double frequency_hz, double rate_hz) {

@@ -54,6 +54,10 @@ const std::vector<Recipe>& stimulus_recipes();
 Outcome<std::unique_ptr<const Stimulus>> make_stimulus(std::string_view shape, const ParameterValues& values,
                                                        const StimulusContext& context);
 
+/// Whether a file stands in a stimulus, at any depth: its samples are no function of the plan's words, so a
+/// run keeps the codes themselves.
+bool is_explicit(std::string_view shape, const ParameterValues& values);
+
 /// The codes that are sent: the stimulus quantised to the input format. This is what both the board
 /// and the oracle get.
 void fill_codes(const Stimulus& stimulus, const SampleFormat& format, Rounding rounding, std::int64_t first_index,

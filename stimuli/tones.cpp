@@ -5,26 +5,13 @@
 #include "stimuli/exact_math.hpp"
 #include "stimuli/number_text.hpp"
 #include "stimuli/philox.hpp"
-#include "stimuli/shape.hpp"
+#include "stimuli/tone_phase.hpp"
 
 namespace halflsb {
 
 namespace {
 
 constexpr std::size_t most_tones = 1000;
-
-/// sin(2 pi (start + n step)), in integers modulo one turn. The step is truncated to 2^-128 turns, so
-/// the phase is good to 2^-88 turns for n up to 2^40.
-struct Tone {
-    TurnFraction step = 0;
-    TurnFraction start = 0;
-
-    TurnFraction phase_at(std::int64_t own_index) const { return start + step * static_cast<std::uint64_t>(own_index); }
-};
-
-Tone tone_of(double frequency_hz, double rate_hz, TurnFraction start) {
-    return {phase_after(wide(frequency_hz) / wide(rate_hz), 1), start};
-}
 
 class Sine final : public PlacedStimulus {
 public:
@@ -51,21 +38,12 @@ private:
 };
 
 StimulusOutcome make_sine(const Recipe& recipe, const ParameterValues& values, const StimulusContext& context) {
-    auto placement = placement_of(recipe, values, context, LevelSign::positive);
+    auto placement = placement_of(recipe, values, context);
     if (!placement) return placement.error();
+    const auto tone = tone_from(recipe, values, context);
+    if (!tone) return tone.error();
     const double frequency_hz = values.number(recipe, "frequency_hz").value_or(0.0);
-    if (auto error = frequency_error("frequency_hz", frequency_hz, context.rate_hz)) return *error;
-    const double phase_turns = values.number(recipe, "phase_turns").value_or(0.0);
-    TurnFraction start = phase_after(wide(std::abs(phase_turns)), 1);
-    if (phase_turns < 0.0) start = 0 - start;
-    if (frequency_hz == context.rate_hz / 2.0 && sine_of_turns(start) == 0.0) {
-        return refused("phase_turns",
-                       number_text(phase_turns) + " makes a sine at Nyquist, " + number_text(frequency_hz) +
-                           " Hz, zero in every sample",
-                       "Give phase_turns = 0.25, or a lower frequency.");
-    }
-    const Tone tone = tone_of(frequency_hz, context.rate_hz, start);
-    return std::unique_ptr<const Stimulus>(std::make_unique<Sine>(*placement, tone, frequency_hz / context.rate_hz));
+    return std::unique_ptr<const Stimulus>(std::make_unique<Sine>(*placement, *tone, frequency_hz / context.rate_hz));
 }
 
 class Multitone final : public PlacedStimulus {
@@ -95,7 +73,7 @@ private:
 };
 
 StimulusOutcome make_multitone(const Recipe& recipe, const ParameterValues& values, const StimulusContext& context) {
-    auto placement = placement_of(recipe, values, context, LevelSign::positive);
+    auto placement = placement_of(recipe, values, context);
     if (!placement) return placement.error();
     const std::vector<double> frequencies_hz = values.numbers("frequencies_hz");
     if (frequencies_hz.size() > most_tones) {
@@ -123,22 +101,46 @@ StimulusOutcome make_multitone(const Recipe& recipe, const ParameterValues& valu
 
 }  // namespace
 
-Shape sine_shape() {
-    std::vector<Parameter> parameters = {
+Tone tone_of(double frequency_hz, double rate_hz, TurnFraction start) {
+    return {phase_after(wide(frequency_hz) / wide(rate_hz), 1), start};
+}
+
+std::vector<Parameter> tone_parameters(std::string_view phase_help) {
+    return {
         {.name = "frequency_hz",
          .type = ParameterType::real,
          .unit = "Hz",
          .minimum = 0.0,
+         .above_minimum = true,
          .required = true,
-         .help = "Frequency, above 0 and not above Nyquist."},
+         .help = "Frequency, not above Nyquist."},
         {.name = "phase_turns",
          .type = ParameterType::real,
          .unit = "turns",
          .minimum = -1.0,
          .maximum = 1.0,
          .default_value = 0.0,
-         .help = "Phase at at_samples; 0.25 makes it a cosine."},
+         .help = phase_help},
     };
+}
+
+Outcome<Tone> tone_from(const Recipe& recipe, const ParameterValues& values, const StimulusContext& context) {
+    const double frequency_hz = values.number(recipe, "frequency_hz").value_or(0.0);
+    if (auto error = frequency_error("frequency_hz", frequency_hz, context.rate_hz)) return *error;
+    const double phase_turns = values.number(recipe, "phase_turns").value_or(0.0);
+    TurnFraction start = phase_after(wide(std::abs(phase_turns)), 1);
+    if (phase_turns < 0.0) start = 0 - start;
+    if (frequency_hz == context.rate_hz / 2.0 && sine_of_turns(start) == 0.0) {
+        return refused("phase_turns",
+                       number_text(phase_turns) + " makes a sine at Nyquist, " + number_text(frequency_hz) +
+                           " Hz, zero in every sample",
+                       "Give phase_turns = 0.25, or a lower frequency.");
+    }
+    return tone_of(frequency_hz, context.rate_hz, start);
+}
+
+Shape sine_shape() {
+    std::vector<Parameter> parameters = tone_parameters("Phase at at_samples; 0.25 makes it a cosine.");
     const auto placement = placement_parameters(LevelSign::positive, 0.5, "Peak of the sine.");
     parameters.insert(parameters.end(), placement.begin(), placement.end());
     return {{.name = "sine", .help = "One sine from at_samples on.", .parameters = std::move(parameters)}, make_sine};
@@ -150,8 +152,9 @@ Shape multitone_shape() {
          .type = ParameterType::reals,
          .unit = "Hz",
          .minimum = 0.0,
+         .above_minimum = true,
          .required = true,
-         .help = "1 to 1000 different frequencies, each above 0 and not above Nyquist."},
+         .help = "1 to 1000 different frequencies, none above Nyquist."},
     };
     const auto placement = placement_parameters(
         LevelSign::positive, 0.5, "Bound of the peak: each tone has this level divided by the number of tones.");

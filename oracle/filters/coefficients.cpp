@@ -17,7 +17,14 @@ FilterStage with_rounded_coefficients(const FilterStage& stage) {
     const int bits = *stage.coefficient_fraction_bits;
     if (auto* fir = std::get_if<Fir>(&rounded.design)) {
         for (double& tap : fir->taps) tap = rounded_coefficient(tap, bits);
-    } else if (auto* cascade = std::get_if<BiquadCascade>(&rounded.design)) {
+    } else if (auto* comb = std::get_if<Comb>(&rounded.design)) {
+        for (double* c : {&comb->direct, &comb->forward, &comb->feedback}) *c = rounded_coefficient(*c, bits);
+    } else if (auto* cascade = std::get_if<BiquadCascade>(&rounded.design); cascade && stage.kind == "one-pole") {
+        // The firmware stores k alone; the pole 1 - k follows from it, and the gain at zero frequency stays 1.
+        BiquadSection& s = cascade->sections.front();
+        s.b0 = rounded_coefficient(s.b0, bits);
+        s.a1 = s.b0 - 1.0;
+    } else if (cascade) {
         for (BiquadSection& s : cascade->sections) {
             for (double* c : {&s.b0, &s.b1, &s.b2, &s.a1, &s.a2}) *c = rounded_coefficient(*c, bits);
         }

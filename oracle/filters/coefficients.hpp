@@ -9,8 +9,10 @@ namespace halflsb {
 /// 0 .. 62. Exact on every machine: only powers of two and std::round are used.
 double rounded_coefficient(double coefficient, int fraction_bits);
 
-/// The stage with its taps, or b0 b1 b2 a1 a2 of each section, rounded to its
-/// coefficient_fraction_bits; unchanged without them, and a moving average always.
+/// The stage with what its firmware stores rounded to its coefficient_fraction_bits: the taps of an FIR; b0 b1 b2 a1
+/// a2 of each section (a DC blocker has r, and with unity gain (1 + r) / 2; a notch all five); k of a one-pole,
+/// whose pole is then 1 - k; direct, forward and feedback of a comb. Unchanged without bits, and a moving average
+/// always.
 FilterStage with_rounded_coefficients(const FilterStage& stage);
 
 }  // namespace halflsb

@@ -1,8 +1,18 @@
 #include "oracle/filters/comb.hpp"
 
 #include <algorithm>
+#include <cmath>
 
 namespace halflsb {
+
+namespace {
+
+// What is fed back stops here, before it gets subnormal and slow; beyond notice in any format. Asked for each
+// sample, so block bounds do not matter, and written so that a NaN goes on.
+constexpr double vanished = 1e-200;
+double or_nothing(double value) { return std::fabs(value) < vanished ? 0.0 : value; }
+
+}  // namespace
 
 CombFilter::CombFilter(const Comb& design)
     : design_(design),
@@ -16,13 +26,21 @@ void CombFilter::reset() {
 }
 
 void CombFilter::process(std::span<const double> in, std::span<double> out) {
-    for (std::size_t i = 0; i < in.size(); ++i) {
-        const double x = in[i];
-        const double y = design_.direct * x + design_.forward * past_in_[place_] - design_.feedback * past_out_[place_];
-        past_in_[place_] = x;
-        past_out_[place_] = y;
-        place_ = place_ + 1 == past_in_.size() ? 0 : place_ + 1;
-        out[i] = y;
+    const Comb taps = design_;
+    for (std::size_t done = 0; done < in.size();) {
+        // Up to the end of the rings in one go.
+        const std::size_t count = std::min(in.size() - done, past_in_.size() - place_);
+        double* const ring_in = past_in_.data() + place_;
+        double* const ring_out = past_out_.data() + place_;
+        for (std::size_t i = 0; i < count; ++i) {
+            const double x = in[done + i];
+            const double y = taps.direct * x + taps.forward * ring_in[i] - taps.feedback * ring_out[i];
+            ring_in[i] = x;
+            ring_out[i] = or_nothing(y);
+            out[done + i] = y;
+        }
+        done += count;
+        place_ = place_ + count == past_in_.size() ? 0 : place_ + count;
     }
 }
 

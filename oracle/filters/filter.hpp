@@ -49,7 +49,8 @@ using FilterDesign = std::variant<MovingAverage, Fir, BiquadCascade, Comb>;
 struct FilterStage {
     FilterDesign design;
     /// The firmware stores each coefficient as a multiple of 2^-coefficient_fraction_bits, rounded
-    /// half away from zero. A moving average has no coefficients and takes none.
+    /// half away from zero (coefficients.hpp). A moving average and a one-pole by shift have no coefficients and take
+    /// none. The arithmetic of a stage that make_stage made says the same number.
     std::optional<int> coefficient_fraction_bits;
     StageArithmetic arithmetic = {};
     std::string kind = {};           ///< as the plan calls it: "one-pole" is a BiquadCascade of one section
@@ -80,7 +81,8 @@ struct StageContext {
 };
 
 /// An Error's place is the name of the parameter to blame (an unstable section is an error). Where the filter's
-/// own words do not give coefficient_fraction_bits, those of the arithmetic hold.
+/// own words do not give coefficient_fraction_bits, those of the arithmetic hold. "unknown" is among the recipes,
+/// for the reader and its messages, but there is no stage to make: it gives an Error of kind defect.
 Outcome<FilterStage> make_stage(std::string_view kind, const ParameterValues& values, const StageContext& context = {});
 
 /// The stages that a channel passes, counted from 1.
@@ -92,12 +94,17 @@ std::unique_ptr<Filter> make_filter(const FilterChain& chain);
 /// section.
 std::complex<double> response_at(const FilterChain& chain, double cycles_per_sample);
 std::vector<double> impulse_response(const FilterChain& chain, std::size_t length);
-/// Sum |h[n]| until the tail is below `tail` of the sum; for stable chains.
-/// Some 24 time constants of the slowest pole are run, at most 2^24 samples; what would come after
+/// Sum |h[n]| until what is left is proven to be below `tail` of the sum; for stable chains.
+/// Some 40 time constants of the slowest pole are run, at most 2^24 samples; what would come after
 /// those (poles within 2e-6 of the unit circle) is added as the rest of a geometric series.
 double l1_norm(const FilterChain& chain, double tail = 1e-12);
-/// How many zeros it takes until nothing is left of what went before: the smallest N with
-/// sum over n >= N of |h[n]| times `full_scale` below `half_step`. nullopt: none up to 2^24 (docs/methods.md).
+/// How many zeros it takes until nothing is left of what went before. The first sample after N zeros stands N + 1
+/// samples behind the newest of the past, so it is the smallest N with
+///     full_scale sum over n > N of |h[n]| < half_step.
+/// Exact for chains without feedback (16 points: 15 zeros); else an upper bound of the rest (impulse_run.hpp)
+/// stands for what is not computed, and N is the smallest up to a millionth of the sum. full_scale and half_step
+/// are in the output's unit and positive. nullopt: no N up to 2^24 could be proven to do. The same N on every machine.
+/// Runs twice over about 3 N samples of the chain.
 std::optional<std::int64_t> flush_samples(const FilterChain& chain, double full_scale, double half_step);
 /// The largest pole radius of the chain; 0 for FIR and moving average.
 double largest_pole_radius(const FilterChain& chain);

@@ -1,56 +1,34 @@
-// What a filter does to one sample, and how large its output can get.
-#include <algorithm>
-#include <array>
+// What a filter does to one sample, how large its output can get, and how long it remembers.
 #include <cmath>
 #include <cstdint>
 
 #include "oracle/filters/filter.hpp"
+#include "oracle/filters/impulse_run.hpp"
 
 namespace halflsb {
 
 namespace {
 
-// Outputs that a unit impulse reaches through the stages without feedback.
-std::int64_t finite_length(const FilterChain& chain) {
-    std::int64_t length = 1;
-    for (const FilterStage& stage : chain) {
-        if (const auto* average = std::get_if<MovingAverage>(&stage.design)) length += average->points - 1;
-        if (const auto* fir = std::get_if<Fir>(&stage.design))
-            length += static_cast<std::int64_t>(fir->taps.size()) - 1;
-        if (const auto* cascade = std::get_if<BiquadCascade>(&stage.design)) {
-            length += 2 * static_cast<std::int64_t>(cascade->sections.size());
-        }
+constexpr std::int64_t most_samples = std::int64_t{1} << 24;
+constexpr auto piece_samples = static_cast<std::int64_t>(ImpulseRun::piece_samples);
+
+// Rounding in a tail, and the part of the bound that is not computed, are below this of the limit.
+constexpr double slack = 0x1p-20;
+
+// The smallest m with sum over n >= m of |h[n]| below the limit: that m lies in the piece behind which the sum first
+// is. The sums are taken from their small ends, so nothing cancels.
+std::int64_t start_of_tail_in(const FilterChain& chain, std::size_t piece_index, double behind, double limit) {
+    ImpulseRun run(chain);
+    std::span<const double> piece = run.next();
+    for (std::size_t i = 0; i < piece_index; ++i) piece = run.next();
+    const std::int64_t first = static_cast<std::int64_t>(piece_index) * piece_samples;
+    double tail = behind;
+    for (std::size_t i = piece.size(); i-- > 0;) {
+        tail += std::fabs(piece[i]);
+        if (!(tail < limit)) return first + static_cast<std::int64_t>(i) + 1;
     }
-    return length;
+    return first;
 }
-
-// Answers a unit impulse piece by piece.
-class ImpulseAnswer {
-public:
-    explicit ImpulseAnswer(const FilterChain& chain) : filter_(make_filter(chain)) {}
-
-    double absolute_sum(std::int64_t samples) {
-        double sum = 0.0;
-        while (samples > 0) {
-            const auto count = static_cast<std::size_t>(std::min(samples, static_cast<std::int64_t>(piece_.size())));
-            std::fill_n(piece_.begin(), count, 0.0);
-            if (first_) piece_[0] = 1.0;
-            first_ = false;
-            const std::span<double> piece(piece_.data(), count);
-            filter_->process(piece, piece);
-            double part = 0.0;
-            for (const double h : piece) part += std::fabs(h);
-            sum += part;
-            samples -= static_cast<std::int64_t>(count);
-        }
-        return sum;
-    }
-
-private:
-    std::unique_ptr<Filter> filter_;
-    std::array<double, 1024> piece_{};
-    bool first_ = true;
-};
 
 }  // namespace
 
@@ -62,44 +40,37 @@ std::vector<double> impulse_response(const FilterChain& chain, std::size_t lengt
 }
 
 std::optional<std::int64_t> flush_samples(const FilterChain& chain, double full_scale, double half_step) {
-    // The whole sum first, then what is left of it after each sample.
-    const double whole = l1_norm(chain, 1e-12);
-    ImpulseAnswer answer(chain);
-    constexpr std::int64_t most_samples = std::int64_t{1} << 24;
-    double gone = 0.0;
-    for (std::int64_t samples = 0; samples <= most_samples; ++samples) {
-        if ((whole - gone) * full_scale < half_step) return samples;
-        gone += answer.absolute_sum(1);
-    }
-    return std::nullopt;
+    const double limit = half_step / full_scale * (1.0 - slack);
+    if (!(limit > 0.0)) return std::nullopt;
+    // Run until the rest does not matter. That takes more samples than the answer, hence twice the most.
+    ImpulseRun run(chain);
+    std::vector<double> sums;
+    do {
+        if (static_cast<std::int64_t>(sums.size()) * piece_samples >= 2 * most_samples) return std::nullopt;
+        sums.push_back(sum_of_sizes(run.next()));
+    } while (!(run.rest() <= slack * limit));
+
+    double behind = run.rest();
+    std::size_t piece = sums.size() - 1;
+    while (piece > 0 && behind + sums[piece] < limit) behind += sums[piece--];
+    const std::int64_t start = start_of_tail_in(chain, piece, behind, limit);
+    // The newest sample of the past is one older than the first zero.
+    const std::int64_t zeros = start > 0 ? start - 1 : 0;
+    return zeros <= most_samples ? std::optional(zeros) : std::nullopt;
 }
 
 double l1_norm(const FilterChain& chain, double tail) {
-    // Beyond this many samples the rest is the sum of a geometric series, from the last stretch.
-    constexpr std::int64_t most_samples = std::int64_t{1} << 24;
-    ImpulseAnswer answer(chain);
-    const std::int64_t finite = finite_length(chain);
-    double sum = answer.absolute_sum(finite);
-    const double radius = largest_pole_radius(chain);
-    if (!(radius > 0.0)) return sum;
-
-    // In a stretch of eight time constants the slowest mode falls to e^-8, and once polynomial factors
-    // of repeated poles have lost their grip each stretch is a fixed fraction of the one before. While
-    // faster modes still die the fraction looks better than it will be, hence never less than e^-8.
-    const double time_constant = -1.0 / std::log(radius);
-    const double wanted = std::ceil(8.0 * time_constant);
-    const auto stretch = static_cast<std::int64_t>(std::clamp(wanted, 64.0, static_cast<double>(most_samples / 4)));
-    const double decay = std::exp(-static_cast<double>(stretch) / time_constant);
-    double before = answer.absolute_sum(stretch);
-    sum += before;
-    for (std::int64_t samples = finite + stretch;; samples += stretch) {
-        const double now = answer.absolute_sum(stretch);
-        sum += now;
-        const double ratio = before > 0.0 ? std::max(now / before, decay) : decay;
-        if (ratio < 0.5 && now * ratio / (1.0 - ratio) <= tail * sum) return sum;
-        if (samples >= most_samples) return decay < 1.0 ? sum + now * decay / (1.0 - decay) : no_limit;
-        before = now;
+    ImpulseRun run(chain);
+    double sum = 0.0, last_quarter = 0.0;
+    for (std::int64_t samples = 0; samples < most_samples; samples += piece_samples) {
+        const double part = sum_of_sizes(run.next());
+        sum += part;
+        if (samples >= most_samples - most_samples / 4) last_quarter += part;
+        if (run.rest() <= tail * sum) return sum;
     }
+    // The slowest pole alone is left: each further quarter is a fixed fraction of the one before.
+    const double decay = std::exp(0.25 * static_cast<double>(most_samples) * std::log(largest_pole_radius(chain)));
+    return decay < 1.0 ? sum + last_quarter * decay / (1.0 - decay) : no_limit;
 }
 
 }  // namespace halflsb

@@ -85,9 +85,23 @@ std::complex<double> response_of(const BiquadCascade& design, double f) {
     return product;
 }
 
+// p0 + p1 e^(-j w). Its real part is p0 + p1 - 2 p1 sin^2(w / 2) or, with w = pi + v, p0 - p1 + 2 p1 sin^2(v / 2), of
+// which the one is taken where nothing cancels. In half turns: h = w / pi, rest = v / pi.
+std::complex<double> two_taps(double p0, double p1, double h, double rest) {
+    if ((p0 < 0.0) != (p1 < 0.0)) {
+        const double s = sin_pi(0.5 * h);
+        return {(p0 + p1) - 2.0 * p1 * s * s, -p1 * sin_pi(h)};
+    }
+    const double s = sin_pi(0.5 * rest);
+    return {(p0 - p1) + 2.0 * p1 * s * s, p1 * sin_pi(rest)};
+}
+
 std::complex<double> response_of(const Comb& design, double f) {
-    const auto turn = unit_at_half_turns(product_modulo_2(-2.0 * f, design.delay_samples));
-    return (design.direct + design.forward * turn) / (1.0 + design.feedback * turn);
+    const double delay = design.delay_samples, product = 2.0 * f * delay;
+    const double lost = std::fma(2.0 * f, delay, -product);
+    // product - 1 is exact but where it is nearer to -1 than to 0, and there nothing hangs on it.
+    const double h = std::remainder(product, 2.0) + lost, rest = std::remainder(product - 1.0, 2.0) + lost;
+    return two_taps(design.direct, design.forward, h, rest) / two_taps(1.0, design.feedback, h, rest);
 }
 
 }  // namespace

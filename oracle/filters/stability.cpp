@@ -18,12 +18,15 @@ double pole_radius(const BiquadSection& section) {
     return 0.5 * (std::fabs(section.a1) + std::sqrt(discriminant));
 }
 
+double pole_radius(const Comb& comb) { return std::pow(std::fabs(comb.feedback), 1.0 / comb.delay_samples); }
+
 double largest_pole_radius(const FilterChain& chain) {
     double largest = 0.0;
     for (const FilterStage& stage : chain) {
-        const auto* cascade = std::get_if<BiquadCascade>(&stage.design);
-        if (cascade == nullptr) continue;
-        for (const BiquadSection& section : cascade->sections) largest = std::max(largest, pole_radius(section));
+        if (const auto* cascade = std::get_if<BiquadCascade>(&stage.design)) {
+            for (const BiquadSection& section : cascade->sections) largest = std::max(largest, pole_radius(section));
+        }
+        if (const auto* comb = std::get_if<Comb>(&stage.design)) largest = std::max(largest, pole_radius(*comb));
     }
     return largest;
 }

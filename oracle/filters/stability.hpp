@@ -1,4 +1,4 @@
-// Poles of a biquad section: z^2 + a1 z + a2 = 0.
+// Poles of a biquad section, z^2 + a1 z + a2 = 0, and of a comb, z^D + feedback = 0.
 #pragma once
 
 #include "oracle/filters/filter.hpp"
@@ -11,5 +11,8 @@ bool is_stable(const BiquadSection& section);
 
 /// The larger of the two pole radii.
 double pole_radius(const BiquadSection& section);
+
+/// The radius of all poles of a comb, |feedback|^(1/delay_samples); it is stable where |feedback| < 1.
+double pole_radius(const Comb& comb);
 
 }  // namespace halflsb

@@ -1,7 +1,7 @@
 // What the firmware promises of one stage's arithmetic: the words of [arithmetic] and [filter.arithmetic].
 //
 // The declared reference (oracle/arithmetic/declared.hpp) uses coefficient_fraction_bits, output_overflow and
-// stage_format; all of them are part of the record.
+// stage_format; accumulator_bits and rounding are kept for the record alone.
 #pragma once
 
 #include <optional>
@@ -25,15 +25,16 @@ struct StageArithmetic {
     std::optional<Rounding> rounding = {};     ///< of the stage's result to its output words
     Overflow output_overflow = Overflow::saturate;
     /// Words between this stage and the next, where the stage overflows; none: wide enough for anything. Of the
-    /// last stage it is the signal's output format.
+    /// last stage that a channel passes it is the signal's output format, whatever stands here.
     std::optional<SampleFormat> stage_format = {};
 };
 
 /// The words, for the reader, its messages and the reference in docs.
 const Recipe& arithmetic_recipe();
 
-/// `values` over `defaults`: what the stage's own table says, and [arithmetic] for the rest. An Error's place is
-/// the parameter to blame.
+/// `values` over `defaults`: what the stage's own table says, and [arithmetic] for the rest. Refused is a value that
+/// does not fit the table, and what cannot be together: an accumulator narrower than the words that it fills, a
+/// float that wraps. An Error's place is the parameter to blame, one that `values` gives.
 Outcome<StageArithmetic> make_arithmetic(const ParameterValues& values, const StageArithmetic& defaults = {});
 
 }  // namespace halflsb

@@ -9,12 +9,11 @@
 #include "rigs/cortex-m4/uart.h"
 #include "rigs/kit/halflsb_kit.h"
 
-static struct halflsb_filter filters[cw7_filter_count];
+static struct halflsb_filter filters[CW7_MOST_FILTERS];
 
 static struct halflsb_board board = {
     .serial = "CW7-0042",
     .filters = filters,
-    .filter_count = cw7_filter_count,
     .tick_hz = TICK_HZ,
     .tick_bits = timer_bits,
     .ticks = timer_ticks,
@@ -24,7 +23,8 @@ static struct halflsb_board board = {
 static const struct uart_receiver receiver = {halflsb_receive_byte, halflsb_receive_overrun};
 
 int main(void) {
-    memcpy(filters, cw7_filters, sizeof filters);
+    memcpy(filters, cw7_offer.filters, cw7_offer.count * sizeof *filters);
+    board.filter_count = cw7_offer.count;
     install_defect(filters);
     board.build_id = build_id(&board.build_id_bytes);
     timer_start();

@@ -50,7 +50,7 @@ static void settle_wide_process(const void* in, void* out, uint16_t count) {
 #define CALL(name, format, function) \
     { name, HALFLSB_CALL, format, format, 1, 1, 0, function##_reset, function##_process, NULL }
 
-const struct halflsb_filter cw7_filters[cw7_filter_count] = {
+static const struct halflsb_filter filters[cw7_filter_count] = {
     [cw7_load_cell] = CALL("load-cell", HALFLSB_Q15, load_cell),
     [cw7_smoothing] = CALL("smoothing", HALFLSB_Q15, smoothing),
     [cw7_quick_smoothing] = CALL("quick-smoothing", HALFLSB_Q15, quick),
@@ -58,3 +58,4 @@ const struct halflsb_filter cw7_filters[cw7_filter_count] = {
     [cw7_settle] = CALL("settle", HALFLSB_Q15, settle),
     [cw7_settle_q31] = CALL("settle-q31", HALFLSB_Q31, settle_wide),
 };
+const struct cw7_offer cw7_offer = {filters, cw7_filter_count};

@@ -1,4 +1,5 @@
-/* The filters of the CW-7, as its greeting lists them. */
+/* The filters of the CW-7, as its greeting lists them, and what an image offers: these, or those of another file that
+ * defines cw7_offer (wide_filters.c). An image links exactly one. */
 #ifndef CW7_FILTERS_H
 #define CW7_FILTERS_H
 
@@ -13,6 +14,12 @@ enum {
     cw7_settle_q31,
     cw7_filter_count
 };
-extern const struct halflsb_filter cw7_filters[cw7_filter_count];
+
+struct cw7_offer {
+    const struct halflsb_filter* filters;
+    uint8_t count; /* up to CW7_MOST_FILTERS */
+};
+#define CW7_MOST_FILTERS 6
+extern const struct cw7_offer cw7_offer;
 
 #endif

@@ -1,5 +1,6 @@
 #include "runner/config/column_times.hpp"
 
+#include <algorithm>
 #include <charconv>
 #include <cmath>
 
@@ -10,15 +11,16 @@ namespace halflsb {
 namespace {
 
 constexpr double rate_tolerance = 1e-6;
-/// Times rounded more coarsely than this part of a step cannot show a missing sample.
-constexpr double coarsest_resolution_steps = 0.25;
+/// A missing sample is off by at least a quarter of the mean step (steps of 1, 2, 1).
+constexpr double widest_tolerance_steps = 0.2;
 
 /// The first time that is not where the rate puts it; the count when there is none.
 std::size_t first_misfit(const ColumnTimes& times, double rate_hz) {
+    const double rounding_s = std::min(times.resolution_s, widest_tolerance_steps / rate_hz);
     for (std::size_t i = 1; i < times.times_s.size(); ++i) {
         const double since_s = static_cast<double>(i) / rate_hz;
         const double off_s = std::fabs(times.times_s[i] - times.times_s[0] - since_s);
-        if (!(off_s <= times.resolution_s + rate_tolerance * since_s)) return i;
+        if (!(off_s <= rounding_s + rate_tolerance * since_s)) return i;
     }
     return times.times_s.size();
 }
@@ -37,26 +39,22 @@ TimesRate rate_of(const ColumnTimes& times) {
         found.remedy = "give the time of each sample in seconds, or leave the column out";
         return found;
     }
-    if (!(times.resolution_s * rate_hz <= coarsest_resolution_steps)) {
-        found.problem = "time_s is given to " + number_text(times.resolution_s) + " s, too coarse for steps of " +
-                        number_text(1.0 / rate_hz) + " s";
-        found.remedy = "give the times more digits, or leave the column out and write # rate_hz = ...";
-        return found;
-    }
     if (times.expected_rate_hz && fits(times, *times.expected_rate_hz)) {
         found.rate_hz = times.expected_rate_hz;
         return found;
     }
-    found.index = first_misfit(times, rate_hz);
-    if (found.index == count) {
-        found.index = 0;
+    if (fits(times, rate_hz)) {
         found.rate_hz = rate_hz;
         return found;
     }
+    // Against the rate that was meant, where it is known: the mean of all would blame the wrong sample.
+    const double wanted_hz = times.expected_rate_hz.value_or(rate_hz);
+    found.index = first_misfit(times, wanted_hz);
     found.problem = "the step of time_s is not constant: " + number_text(times.times_s[found.index]) + " s at sample " +
-                    std::to_string(found.index) + ", where " + number_text(rate_hz) + " Hz wants " +
-                    number_text(times.times_s[0] + static_cast<double>(found.index) / rate_hz) + " s";
-    found.remedy = "samples must be evenly spaced: mend the record, or leave the column out";
+                    std::to_string(found.index) + ", where " + number_text(wanted_hz) + " Hz wants " +
+                    number_text(times.times_s[0] + static_cast<double>(found.index) / wanted_hz) + " s";
+    found.remedy =
+        "samples must be evenly spaced: mend the record, give the times more digits, or leave the column out";
     return found;
 }
 

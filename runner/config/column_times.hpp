@@ -16,7 +16,7 @@ struct ColumnTimes {
 };
 
 /// Each time lies where the rate puts it, counted from the first one: within one unit of the last digit (two
-/// times rounded by half of it) and 1e-6 of the time since the first.
+/// times rounded by half of it), but not a fifth of a step, and 1e-6 of the time since the first.
 bool fits(const ColumnTimes& times, double rate_hz);
 
 struct TimesRate {

@@ -313,6 +313,9 @@ std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlE
 std::string range_text(const Parameter& parameter) {
     const bool below = std::isfinite(parameter.minimum), above = std::isfinite(parameter.maximum);
     const std::string unit = parameter.unit.empty() ? "" : " " + std::string(parameter.unit);
+    if (below && parameter.above_minimum)
+        return "above " + number_text(parameter.minimum) +
+               (above ? " and at most " + number_text(parameter.maximum) : "") + unit;
     if (below && above)
         return "from " + number_text(parameter.minimum) + " to " + number_text(parameter.maximum) + unit;
     if (below) return "of at least " + number_text(parameter.minimum) + unit;

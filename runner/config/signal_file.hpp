@@ -24,7 +24,7 @@ struct SignalFileName {
 };
 
 /// The columns, or the rendered message about the first thing that is wrong, at the file's own line and column, or
-/// byte. Some 10 million numbers a second; holds them as doubles.
+/// byte. Some 5 million numbers a second; holds them as doubles.
 std::variant<SignalFile, std::string> read_signal_file(const SignalFileName& name, std::string bytes);
 
 /// The most columns a file may have.

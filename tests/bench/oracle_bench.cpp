@@ -64,6 +64,14 @@ int main(int count, char** arguments) {
     time_filter("biquads-1", BiquadCascade{{section}});
     time_filter("biquads-4", BiquadCascade{{section, section, section, section}});
 
+    time_filter("comb-24", Comb{24, 1.0, 0.5, -0.7});
+    time_filter("comb-4000", Comb{4000, 1.0, 0.5, -0.7});
+    const FilterStage slow{BiquadCascade{{BiquadSection{1e-5, 0.0, 0.0, 1e-5 - 1.0, 0.0}}}, std::nullopt};
+    std::int64_t zeros = 0;
+    const double flush_seconds = seconds_of([&] { zeros += flush_samples({slow}, 1.0, 0x1p-16).value_or(0); });
+    std::printf("flush-1e6 %.9f\n", zeros > 0 ? flush_seconds : 0.0);
+    time_filter("biquads-4", BiquadCascade{{section, section, section, section}});
+
     // y is the last filter's output now: the same record the Python side makes for the measures.
     double kept = 0.0;  // what is computed must be used, or it would not be computed
     const auto time_measure = [&](const char* name, const std::function<double()>& job) {

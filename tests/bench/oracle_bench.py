@@ -63,6 +63,20 @@ def tones(x, y):
         np.dot(turn, x), np.dot(turn, y)
 
 
+def comb(x, delay):
+    b, a = np.zeros(delay + 1), np.zeros(delay + 1)
+    b[0], b[-1], a[0], a[-1] = 1, 0.5, 1, -0.7
+    return signal.lfilter(b, a, x)
+
+
+def flush(pole):
+    """The least N with the sum of |h| beyond it under 2^-16, from 4e6 samples of h."""
+    impulse = np.zeros(4_000_000)
+    impulse[0] = 1 - pole
+    tails = np.cumsum(np.abs(signal.lfilter([1], [1, -pole], impulse))[::-1])[::-1]
+    return np.argmax(tails < 2**-16) - 1
+
+
 def jobs(x):
     section = [0.0675, 0.1349, 0.0675, 1, -1.143, 0.4128]
     yield "moving-average-16", "lfilter", lambda: signal.lfilter(np.full(16, 1 / 16), 1, x)
@@ -71,6 +85,9 @@ def jobs(x):
         yield f"fir-{taps}", "lfilter", lambda taps=taps: signal.lfilter(np.full(taps, 1 / taps), 1, x)
     for count in (1, 4):
         yield f"biquads-{count}", "sosfilt", lambda count=count: signal.sosfilt([section] * count, x)
+    for delay in (24, 4000):
+        yield f"comb-{delay}", "lfilter", lambda delay=delay: comb(x, delay)
+    yield "flush-1e6", "lfilter and cumsum", lambda: flush(1 - 1e-5)
     y = signal.sosfilt([section] * 4, x)
     yield "error", "NumPy", lambda: error_figures(x, y)
     yield "lag-64", "NumPy, differences", lambda: lag_by_differences(x, y)

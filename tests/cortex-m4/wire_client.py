@@ -11,7 +11,9 @@ import zlib
 HELLO, START, STATUS, ECHO, SAMPLES, RESET = 0x01, 0x02, 0x03, 0x04, 0x10, 0x11
 GREETING, STARTED, COUNTERS, ECHOED = 0x81, 0x82, 0x83, 0x84
 RESPONSE, DONE, EXPECT, REFUSED = 0x90, 0x91, 0x92, 0xFF
-WORD = {1: "h", 2: "i", 3: "h", 4: "i", 5: "f"}  # struct's letter for each sample format
+LEFT = 1 << 5
+# struct's letter for the word of each sample format; a left-justified u12 is a word of 16 bits.
+WORD = {1: "h", 2: "i", 3: "h", 4: "i", 5: "f", 8: "i", 10 | LEFT: "H"}
 
 Filter = collections.namedtuple("Filter", "name injection input output channels_in channels_out nodes tables")
 Greeting = collections.namedtuple("Greeting", "build_id serial filters settings block credit tick_hz tick_bits")
@@ -164,7 +166,8 @@ class WireClient:
     def stream(self, number, filter_, samples, block):
         """All samples through the filter from reset, as (output, ticks of each block, largest of each block)."""
         block, credit = self.start(number, block)
-        blocks = [samples[at : at + block] for at in range(0, len(samples), block)]
+        step = block * filter_.channels_in
+        blocks = [samples[at : at + step] for at in range(0, len(samples), step)]
         output, totals, largest, sent = [], [], [], 0
         for expected in range(len(blocks)):
             while sent < len(blocks) and sent - expected < credit:

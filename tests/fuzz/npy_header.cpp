@@ -1,4 +1,5 @@
 // A header that parses stays inside the file and says what a header of ours for the same array says.
+#include <limits>
 #include <string>
 
 #include "stimuli/npy.hpp"
@@ -14,13 +15,15 @@ extern "C" int LLVMFuzzerTestOneInput(const std::uint8_t* data, std::size_t size
                       "a refusal says where and what", to_text(error));
         return 0;
     }
-    fuzz::require(parsed->count >= 0, "a count is not negative");
+    fuzz::require(parsed->count >= 0 && parsed->channels >= 0, "a length is not negative");
     fuzz::require(parsed->data_offset <= size && parsed->data_offset <= npy_longest_header_bytes + 12,
                   "a header lies in the file");
-    const NpyHeaderBytes ours = npy_header(parsed->type, parsed->count);
+    if (parsed->channels > std::numeric_limits<int>::max()) return 0;  // more than any header of ours has
+    const NpyHeaderBytes ours = npy_header(parsed->type, parsed->count, static_cast<int>(parsed->channels));
     const Outcome<NpyHeader> again = parse_npy_header(ours);
     fuzz::require(bool(again), "our own header parses", again ? "" : to_text(again.error()));
-    fuzz::require(again->type == parsed->type && again->count == parsed->count && again->data_offset == ours.size(),
+    fuzz::require(again->type == parsed->type && again->count == parsed->count && again->channels == parsed->channels &&
+                      again->data_offset == ours.size(),
                   "parse(header(x)) = x");
     return 0;
 }

@@ -21,6 +21,11 @@ TOLERANCE = 1e-12
 # A slope from responses 2e-4 / N apart, N samples being the filter's memory: third derivatives stray by
 # (2 pi 1e-4)^2 / 6 of the delay, 7e-8, rounding by 1e-14 / 2e-4 of N: 5e-11.
 GROUP_DELAY_TOLERANCE = 1e-5
+RATE_HZ = 1000.0
+IMPULSE_SAMPLES = 20000
+# What is left after the flush, against the limit. Ours takes the sum up to 2^-20 of it; SciPy's tail strays by 1e-14
+# of the norm, and the smallest limit is 1e-10 of it.
+FLUSH_TOLERANCE = 1e-3
 
 
 def random_sections(rng):
@@ -37,6 +42,31 @@ def random_sections(rng):
         peak = np.max(np.abs(signal.freqz(b, [1, a1, a2], 64)[1]))
         rows.append([*(b / peak), a1, a2])
     return rows
+
+
+def random_comb(rng):
+    """delay direct forward feedback, decayed to 1e-18 within a tenth of IMPULSE_SAMPLES."""
+    direct, forward = rng.uniform(-1, 1, 2)
+    feedback = rng.choice([0.0, rng.uniform(-0.8, 0.8)])
+    return [float(rng.integers(1, 11)), direct, forward or 0.5, feedback]
+
+
+def random_one_pole(rng):
+    """A way to give k, and its number."""
+    way = int(rng.integers(0, 4))
+    k = 10 ** rng.uniform(-2.5, -0.01)
+    numbers = [k, float(rng.integers(0, 9)), -np.log1p(-k) / (2 * np.pi) * RATE_HZ, -1 / np.log1p(-k) / RATE_HZ]
+    return [float(way), min(numbers[way], 0.499 * RATE_HZ) if way == 2 else numbers[way]]
+
+
+def random_dc_blocker(rng):
+    """A way to give r, its number, and whether the gain at half the rate is 1."""
+    way = int(rng.integers(0, 2))
+    return [float(way), [rng.uniform(0.0, 0.995), 10 ** rng.uniform(0, 2.5)][way], float(rng.integers(0, 2))]
+
+
+def random_notch(rng):
+    return [rng.uniform(20, 480), 10 ** rng.uniform(-1, 0.7)]
 
 
 def random_designs(rng):
@@ -56,6 +86,17 @@ def random_designs(rng):
             (0, [float(rng.integers(1, 40))]),
             (1, list(rng.uniform(-1, 1, rng.integers(1, 40)))),
         ]
+    for name, kind, numbers in (
+        ("comb", 3, random_comb),
+        ("one-pole", 4, random_one_pole),
+        ("DC blocker", 5, random_dc_blocker),
+        ("notch", 6, random_notch),
+    ):
+        for _ in range(DESIGNS_PER_KIND):
+            yield name, [(kind, numbers(rng))]
+    for _ in range(DESIGNS_PER_KIND):
+        yield "chain of new kinds", [(3, random_comb(rng)), (5, random_dc_blocker(rng)), (0, [float(rng.integers(1, 40))]),
+                                     (6, random_notch(rng)), (4, random_one_pole(rng))]
 
 
 def as_sections(numbers):
@@ -63,9 +104,32 @@ def as_sections(numbers):
     return np.column_stack([rows[:, :3], np.ones(len(rows)), rows[:, 3:]])
 
 
+def polynomials(kind, numbers):
+    """b and a of the kinds that a plan gives by other numbers than these."""
+    if kind == 3:
+        delay, direct, forward, feedback = numbers
+        gap = np.zeros(int(delay) - 1)
+        return [direct, *gap, forward], [1.0, *gap, feedback]
+    if kind == 4:
+        way, value = numbers
+        if way < 2:
+            k = value if way == 0 else 2.0**-value
+        else:
+            k = -np.expm1(-2 * np.pi * value / RATE_HZ if way == 2 else -1 / (value * RATE_HZ))
+        return [k], [1.0, k - 1.0]
+    if kind == 5:
+        way, value, unity = numbers
+        r = value if way == 0 else np.exp(-2 * np.pi * value / RATE_HZ)
+        gain = (1 + r) / 2 if unity else 1.0
+        return [gain, -gain], [1.0, -r]
+    # The analogue notch (s^2 + 1) / (s^2 + s/q + 1), its frequency moved to where the bilinear transform puts it.
+    frequency, q = numbers
+    return signal.bilinear([1, 0, 1], [1, 1 / q, 1], fs=0.5 / np.tan(np.pi * frequency / RATE_HZ))
+
+
 def group_delay(b, a, w):
     """SciPy's, quiet about frequencies where the filter returns nothing: those are left out later."""
-    with warnings.catch_warnings():
+    with warnings.catch_warnings(), np.errstate(divide="ignore", invalid="ignore"):
         warnings.simplefilter("ignore", UserWarning)
         return signal.group_delay((b, a), w)[1]
 
@@ -83,6 +147,14 @@ def by_scipy(stages, frequencies, samples):
                 delay = delay + group_delay(row[:3], row[3:], w)
                 radius = max(radius, np.max(np.abs(np.roots(row[3:]))))
             memory += 100
+        elif kind >= 3:
+            b, a = polynomials(kind, numbers)
+            samples = signal.lfilter(b, a, samples)
+            response = response * signal.freqz(b, a, w)[1]
+            delay = delay + group_delay(b, a, w)
+            if any(a[1:]):
+                radius = max(radius, np.max(np.abs(np.roots(a))))
+            memory += 1000
         else:
             taps = np.array(numbers) if kind == 1 else np.full(int(numbers[0]), 1 / numbers[0])
             samples = signal.lfilter(taps, 1, samples)
@@ -92,10 +164,12 @@ def by_scipy(stages, frequencies, samples):
     return samples, response, delay, radius, memory
 
 
-def l1_by_scipy(stages):
-    impulse = np.zeros(20000)
+def tails_by_scipy(stages):
+    """Sum of |h[n]| from each n on: the first is the L1 norm."""
+    impulse = np.zeros(IMPULSE_SAMPLES)
     impulse[0] = 1
-    return np.sum(np.abs(by_scipy(stages, np.array([0.1]), impulse)[0]))
+    sizes = np.abs(by_scipy(stages, np.array([0.1]), impulse)[0])
+    return np.append(np.cumsum(sizes[::-1])[::-1], 0.0)
 
 
 def main():
@@ -110,14 +184,15 @@ def main():
         step = 1e-4 / memory
         # 0 and 1/2 are where cancellation is worst; the pairs give a slope of the phase.
         frequencies = np.concatenate([[0.0, 0.5], f, f - step, f + step])
-        cases.append((name, stages, f, step, frequencies, rng.uniform(-1, 1, SAMPLES)))
+        half_step = 2.0 ** -int(rng.choice([9, 16, 32]))
+        cases.append((name, stages, f, step, frequencies, rng.uniform(-1, 1, SAMPLES), half_step))
 
     message = []
-    for _, stages, _, _, frequencies, samples in cases:
+    for _, stages, _, _, frequencies, samples, half_step in cases:
         message.append([len(stages)])
         for kind, numbers in stages:
             message.append([kind, len(numbers), *numbers])
-        message += [[len(frequencies)], frequencies, [len(samples)], samples]
+        message += [[len(frequencies)], frequencies, [len(samples)], samples, [half_step]]
     sent = np.concatenate([np.asarray(part, dtype=float) for part in message]).tobytes()
     answer = np.frombuffer(subprocess.run([program], input=sent, capture_output=True, check=True).stdout)
 
@@ -132,21 +207,26 @@ def main():
             failures += 1
             print(f"FAILED case {case} ({cases[case][0]}): {what} off by {deviation:.3g}, allowed {tolerance:.3g}")
 
-    for number, (name, stages, f, step, frequencies, samples) in enumerate(cases):
+    for number, (name, stages, f, step, frequencies, samples, half_step) in enumerate(cases):
         output = answer[at : at + SAMPLES]
         at += SAMPLES
         pairs = answer[at : at + 2 * len(frequencies)]
         response = pairs[0::2] + 1j * pairs[1::2]
         at += 2 * len(frequencies)
-        l1, radius = answer[at : at + 2]
-        at += 2
+        l1, radius, flush = answer[at : at + 3]
+        at += 3
         expected, expected_response, delay, expected_radius, memory = by_scipy(stages, frequencies, samples)
-        norm = l1_by_scipy(stages)
+        tails = tails_by_scipy(stages)
+        norm = tails[0]
         check(number, "output", np.max(np.abs(output - expected)), TOLERANCE * norm)
         check(number, "response", np.max(np.abs(response - expected_response)), TOLERANCE * norm)
         # np.roots of a double pole is off by the root of 2^-52
         check(number, "pole radius", abs(radius - expected_radius), 1e-7)
         check(number, "L1 norm", abs(l1 - norm), 1e-11 * norm)
+        # After N zeros the newest of the past is N + 1 samples old: that sum is below the limit, the one before is not.
+        left, one_less = tails[int(flush) + 1], tails[int(flush)]
+        check(number, "left after the flush", max(left / half_step - 1, 0), FLUSH_TOLERANCE)
+        check(number, "flush longer than need be", max(1 - one_less / half_step, 0) if flush > 0 else 0, FLUSH_TOLERANCE)
         below, above = response[8:14], response[14:20]
         loud = np.abs(expected_response[2:8]) > 0.05 * norm / memory
         slope = -np.angle(above / np.where(below == 0, 1, below)) / (2 * np.pi * 2 * step)

@@ -7,6 +7,7 @@ import io
 import random
 import subprocess
 import sys
+from fractions import Fraction
 
 import numpy as np
 import scipy.signal
@@ -18,6 +19,8 @@ PROGRAM = sys.argv[1]
 SEED = 20240117  # of the questions asked here
 checks = 0
 failures = 0
+samples_31 = 0  # compared in words of more than 24 bits
+different_31 = 0
 hashes_met = set()
 
 
@@ -105,13 +108,17 @@ def test_quantile(rng):
 # --- shapes against mpmath ---------------------------------------------------------------------------
 
 
-def scaled(format_name):
-    return {"q15": 2**15, "i16": 2**15, "q31": 2**31, "i32": 2**31}[format_name]
+WORD_BITS = {"q7": 8, "q15": 16, "q31": 32, "i8": 8, "i16": 16, "i24": 24, "i32": 32, "u8": 8, "u12": 12, "u16": 16}
 
 
 def half_up(ratio, format_name):
-    end = scaled(format_name)
-    return int(min(max(mp.floor(ratio * end + mpf(1) / 2), -end), end - 1))
+    """Of an mpf or a Fraction."""
+    end = 2 ** (WORD_BITS[format_name] - 1)
+    if isinstance(ratio, Fraction):
+        whole = (ratio * end + Fraction(1, 2)).__floor__()
+    else:
+        whole = int(mp.floor(ratio * end + mpf(1) / 2))
+    return min(max(whole, -end), end - 1) + (end if format_name[0] == "u" else 0)
 
 
 def fnv1a(codes):
@@ -136,23 +143,36 @@ SAME_CODES = {
     ("uniform noise", "q31", 8_589_934_591): 0x3e6ef740c229f88b,
     ("normal noise", "q31", 8_589_934_591): 0xdfa3c505273f32a0,
     ("normal noise", "q15", 0): 0xc170db1ab80e0b62,
+    ("ramp 0.3333333333333333 to 0.7", "q31", 3_333_333_333): 0xc8f934449d54f8a5,
+    ("square {'frequency_hz': 997.1, 'duty': 0.3}", "q31", 9_999_999_000): 0x7b6d60ee9a951465,
+    ("burst", "q31", 8_000_000_123): 0xe46353c937e45d71,
+    ("prbs 31", "q15", 9_999_999_800): 0x000abcae0c886707,
+    ("sequence and sum", "q31", 0): 0xeed99954c3b39e27,
 }
 
 
+def check_hash(key, expected):
+    check(fnv1a(expected) == SAME_CODES[key], f"{key}: the hash of the expected codes is {fnv1a(expected):#018x}")
+    hashes_met.add(key)
+
+
 def compare(name, form, rate, first, count, parameters, ratio_of, format_name):
-    """Codes equal for 16 bits. For 32 bits at most one code off in at most one sample of 100,000: a
-    double's error of 1e-16 is 2e-7 LSB, which crosses a tie once in millions; here none is expected."""
+    """Codes equal up to 24 bits. For 32 bits at most one code off, and main() holds all of them together to
+    one sample of 100,000: a double's error of 1e-16 is 2e-7 LSB, which crosses a tie once in millions."""
     answer = ask([words_of("codes", form, [format_name, "half-up", rate, first, count], parameters)])[0]
     ours = [int(w) for w in answer.split()]
     expected = [half_up(ratio_of(n), format_name) for n in range(first, first + count)]
     different = [(n, a, b) for n, (a, b) in enumerate(zip(ours, expected)) if a != b]
     check(len(ours) == count, f"{name} {format_name}: {answer[:200]}")
-    check(all(abs(a - b) <= 1 for _, a, b in different), f"{name} {format_name}: {different[:3]}")
-    check(not different, f"{name} {format_name} from {first}: {len(different)} codes differ, {different[:3]}")
+    global samples_31, different_31
+    if WORD_BITS[format_name] > 24:
+        samples_31 += count
+        different_31 += len(different)
+        check(all(abs(a - b) <= 1 for _, a, b in different), f"{name} {format_name}: {different[:3]}")
+    else:
+        check(not different, f"{name} {format_name} from {first}: {len(different)} codes differ, {different[:3]}")
     if (name, format_name, first) in SAME_CODES:
-        check(fnv1a(expected) == SAME_CODES[name, format_name, first], f"{name} {format_name} from {first}: the hash "
-              f"of the expected codes is {fnv1a(expected):#018x}")
-        hashes_met.add((name, format_name, first))
+        check_hash((name, format_name, first), expected)
 
 
 def test_tones():
@@ -160,10 +180,13 @@ def test_tones():
     def sine(n):
         return level * mp.sin(2 * mp.pi * (mpf(frequency) / mpf(rate) * n + mpf(phase)))
     for first in (0, 123_456_789, 9_999_990_000):
-        for format_name in ("q15", "q31", "i32"):
+        for format_name in ("q7", "q15", "q31", "i24", "i32", "u8", "u12", "u16"):
             compare("sine", "sine", rate, first, 1500,
                     dict(length_samples=10**10, frequency_hz=frequency, phase_turns=phase, level_ratio=level),
                     sine, format_name)
+    # As many as the claim about words of 32 bits needs.
+    compare("sine", "sine", rate, 7_777_777_777, 120_000,
+            dict(length_samples=10**10, frequency_hz=frequency, phase_turns=phase, level_ratio=level), sine, "q31")
 
     tones, seed = [100.0, 250.5, 1234.5, 19999.9, 24000.0], 77
     starts = [mpf(bits(seed, 1, k)) / 2**64 for k in range(len(tones))]
@@ -236,16 +259,265 @@ def test_noise():
                     normal, format_name)
 
 
+# --- ramp, square, bursts: the same formulas in fractions ------------------------------------------------
+
+
+def test_ramps():
+    """Exact on both sides, so that words of 32 bits are equal too."""
+    cases = [(-1.0, 1.0, 1000), (0.1, -0.7, 997), (1 / 3, 0.7, 10**10), (-2.0**-20, 2.0**-20, 10**7),
+             (0.25, 0.25 + 2.0**-30, 64)]
+    for low, high, length in cases:
+        def ramp(n):
+            return Fraction(low) + (Fraction(high) - Fraction(low)) * n / (length - 1)
+        for first in (0, length // 3, max(0, length - 500)):
+            count = min(500, length - first)
+            for format_name in ("q15", "q31", "i24", "u12"):
+                before = different_31
+                compare(f"ramp {low} to {high}", "ramp", 48000.0, first, count,
+                        dict(length_samples=length, from_ratio=low, to_ratio=high), ramp, format_name)
+                check(different_31 == before, f"ramp {low} to {high}: 32-bit codes differ")
+    # Values at and a hair beside ties of 16 bits, in every rounding.
+    rng = random.Random(SEED)
+    for _ in range(40):
+        length = rng.randrange(3, 60)
+        low = (rng.randrange(-2**16, 2**16) | 1) * 2.0**-16 * rng.choice([1.0, 1.0 - 2.0**-53, 1.0 + 2.0**-52])
+        high = (rng.randrange(-2**16, 2**16) | 1) * 2.0**-16
+        if low == high or max(abs(low), abs(high)) > 1:
+            continue
+        exact = [Fraction(low) + (Fraction(high) - Fraction(low)) * n / (length - 1) for n in range(length)]
+        for rounding in ("floor", "half-up", "half-even", "toward-zero"):
+            answer = ask([words_of("codes", "ramp", ["q15", rounding, 1.0, 0, length],
+                                   dict(length_samples=length, from_ratio=low.hex(), to_ratio=high.hex()))])[0]
+            expected = [min(max(rounded(x * 2**15, rounding), -2**15), 2**15 - 1) for x in exact]
+            check([int(w) for w in answer.split()] == expected, f"ramp {low!r} to {high!r} over {length}, {rounding}")
+
+
+def rounded(x, rounding):
+    floor = x.__floor__()
+    if rounding == "floor":
+        return floor
+    if rounding == "half-up":
+        return (x + Fraction(1, 2)).__floor__()
+    if rounding == "half-even":
+        return round(x)
+    return x.__trunc__()
+
+
+def test_squares():
+    cases = [dict(frequency_hz=1000.0), dict(frequency_hz=997.1, duty=0.3), dict(frequency_hz=15000.0),
+             dict(period_samples=7, duty=0.4), dict(period_samples=10, duty=0.1), dict(frequency_hz=24000.0),
+             dict(frequency_hz=1e-5, duty=0.25)]
+    for case in cases:
+        rate = 48000.0
+        advance = (Fraction(1, case["period_samples"]) if "period_samples" in case
+                   else Fraction(case["frequency_hz"]) / Fraction(rate))
+        # The duty as the plan means it, less a millionth of a sample.
+        duty = Fraction(case.get("duty", 0.5)) - advance / 10**6
+        def square(n):
+            return Fraction(3, 4) if n * advance % 1 < duty else Fraction(-3, 4)
+        for first in (0, 1_234_567_891, 9_999_999_000):
+            for format_name in ("q15", "i24", "q31"):
+                compare(f"square {case}", "square", rate, first, 1000,
+                        dict(case, length_samples=10**10, level_ratio=0.75), square, format_name)
+
+
+def test_bursts():
+    rate, frequency, phase, on, off, repeats = 48000.0, 997.1, 0.2, 333, 77, 20_000_000
+    def burst(n):
+        cycle, within = divmod(n, on + off)
+        if within >= on or cycle >= repeats:
+            return mpf(0)
+        return mpf(0.6) * mp.sin(2 * mp.pi * (mpf(frequency) / mpf(rate) * within + mpf(phase)))
+    for first in (0, 8_000_000_123, (on + off) * repeats - 700):
+        for format_name in ("q15", "q31", "i24"):
+            compare("burst", "burst", rate, first, 1500,
+                    dict(length_samples=10**10, frequency_hz=frequency, phase_turns=phase, on_samples=on, off_samples=off,
+                         repeats=repeats, level_ratio=0.6), burst, format_name)
+
+
+# --- PRBS: a register, bit by bit -----------------------------------------------------------------------
+
+# ITU-T O.150 (05/96), section 5: stages, the second stage that is fed back, whether the signal is inverted.
+# SEEN in two secondary sources that quote its table 1.
+PATTERNS = {9: (5, False), 11: (9, False), 15: (14, True), 20: (3, False), 23: (18, True), 31: (28, True)}
+
+
+def register_bits(order, start, count):
+    """Stages 1 .. order as a list, the sum of two fed to the first, the last one sent."""
+    tap, inverted = PATTERNS[order]
+    stages = [start >> k & 1 for k in range(order)]
+    for _ in range(count):
+        yield stages[-1] ^ inverted
+        stages = [stages[tap - 1] ^ stages[order - 1]] + stages[:-1]
+
+
+def power_of_x(order, exponent):
+    """x^exponent modulo the characteristic polynomial x^order + x^(order - tap) + 1, as bits: another way to jump
+    than a matrix. a[n + order] = a[n + order - tap] + a[n]."""
+    modulus = 1 << order | 1 << (order - PATTERNS[order][0]) | 1
+    def product(a, b):
+        result = 0
+        while b:
+            if b & 1:
+                result ^= a
+            a, b = a << 1, b >> 1
+            if a >> order:
+                a ^= modulus
+        return result
+    result, base = 1, 2
+    while exponent:
+        if exponent & 1:
+            result = product(result, base)
+        base, exponent = product(base, base), exponent >> 1
+    return result
+
+
+def prbs_bit(order, start, n):
+    """a[n] is the sum of those a[k], k < order, whose x^k stands in x^n; a[k] is stage order - k at the start."""
+    power = power_of_x(order, n)
+    return sum(start >> (order - 1 - k) & 1 for k in range(order) if power >> k & 1) % 2 ^ PATTERNS[order][1]
+
+
+def test_prbs():
+    for order, (tap, inverted) in PATTERNS.items():
+        ones = 2**order - 1
+        for start in (None, 1, 0b101010101, ones - 2):
+            given = {} if start is None else dict(register_seed=start)
+            register = ones if start is None else start
+            bits_here = list(register_bits(order, register, 3000))
+            check(bits_here[:40] == [prbs_bit(order, register, n) for n in range(40)], f"prbs {order}: our two ways")
+            compare_bits(order, given, 0, bits_here)
+            for first in (1_000_000_007, 9_999_999_800, 2**order - 101):
+                compare_bits(order, given, first, [prbs_bit(order, register, n) for n in range(first, first + 200)])
+    for order in (9, 11, 15):
+        period = 2**order - 1
+        answer = ask([words_of("codes", "prbs", ["q15", "half-up", 1.0, 0, 2 * period],
+                               dict(order=order, length_samples=2 * period, level_ratio=0.5))])[0].split()
+        signs = np.array([int(w) for w in answer]) > 0
+        check(np.array_equal(signs[:period], signs[period:]), f"prbs {order}: the period")
+        check(not any(np.array_equal(signs[:period], signs[d:d + period]) for d in (1, 7, 31, 73, period // 3)),
+              f"prbs {order}: no shorter one")
+        check(abs(int(signs[:period].sum()) * 2 - period) == 1, f"prbs {order}: balance")
+        # Its autocorrelation is -1 everywhere but at 0.
+        spectrum = np.abs(np.fft.fft(2.0 * signs[:period] - 1.0)) ** 2
+        check(np.allclose(spectrum[1:], period + 1) and np.isclose(spectrum[0], 1), f"prbs {order}: white")
+
+
+def compare_bits(order, given, first, bits_expected):
+    answer = ask([words_of("codes", "prbs", ["q15", "half-up", 1.0, first, len(bits_expected)],
+                           dict(given, order=order, length_samples=10**10, level_ratio=0.5))])[0].split()
+    expected = [16384 if b else -16384 for b in bits_expected]
+    check([int(w) for w in answer] == expected, f"prbs {order} {given} from {first}")
+    if not given and (f"prbs {order}", "q15", first) in SAME_CODES:
+        check_hash((f"prbs {order}", "q15", first), expected)
+
+
+# --- stimuli inside stimuli, and files ---------------------------------------------------------------------
+
+
+def test_compounds():
+    """A ramp, a gap and a sine one after the other, twice, with a slow sine and a step added."""
+    rate = 48000.0
+    parts = [(400, lambda n: Fraction(-1, 2) + Fraction(n, 399)), (100, lambda n: 0),
+             (700, lambda n: mpf(0.4) * mp.sin(2 * mp.pi * mpf(1234.5) / mpf(rate) * n))]
+    def sequence(n):
+        n %= 1200
+        for length, value in parts:
+            if n < length:
+                v = value(n)
+                return mpf(v.numerator) / v.denominator if isinstance(v, Fraction) else mpf(v)
+            n -= length
+    def whole(n):
+        slow = mpf(0.3) * mp.sin(2 * mp.pi * mpf(3.3) / mpf(rate) * n)
+        return sequence(n) + slow + (mpf(0.125) if 1000 <= n < 1500 else 0)
+    words = ("parts=( ramp length_samples=400 from_ratio=-0.5 to_ratio=0.5 ; silence length_samples=100 ; "
+             "sine length_samples=700 frequency_hz=1234.5 level_ratio=0.4 ) repeat=2 "
+             "add=( sine frequency_hz=3.3 level_ratio=0.3 ; step length_samples=1500 at_samples=1000 level_ratio=0.125 )")
+    for format_name in ("q15", "q31", "i24", "u12"):
+        answer = ask([f"codes sequence {format_name} half-up {rate} 0 2400 {words}"])[0]
+        ours, expected = [int(w) for w in answer.split()], [half_up(whole(n), format_name) for n in range(2400)]
+        different = sum(a != b for a, b in zip(ours, expected))
+        check(len(ours) == 2400 and (different == 0 if WORD_BITS[format_name] <= 24 else
+                                     max(abs(a - b) for a, b in zip(ours, expected)) <= 1),
+              f"sequence and sum {format_name}: {different} differ, {answer[:100]}")
+        if format_name == "q31":
+            global samples_31, different_31
+            samples_31, different_31 = samples_31 + 2400, different_31 + different
+            check_hash(("sequence and sum", "q31", 0), expected)
+
+
+def test_files(rng):
+    for format_name, bits_count in WORD_BITS.items():
+        low = 0 if format_name[0] == "u" else -2 ** (bits_count - 1)
+        codes = [rng.randrange(low, low + 2**bits_count) for _ in range(300)] + [low, low + 2**bits_count - 1]
+        answer = ask([f"codes file {format_name} half-even 1200 0 {len(codes)} file={','.join(map(str, codes))}"])[0]
+        check(answer.split() == [str(c) for c in codes], f"file of {format_name} codes")
+        ratios = [rng.uniform(-1, 1) for _ in range(300)]
+        for holds, factor in (("ratio", 1.0), ("unit", 6000.0)):
+            held = [r * factor for r in ratios]
+            text = ",".join(map(repr, held))
+            answer = ask([f"codes file {format_name} half-up 1200 0 300 file={text} holds={holds} full_scale_unit=6000"])[0]
+            expected = [half_up(mpf(h) / mpf(factor), format_name) for h in held]
+            check([int(w) for w in answer.split()] == expected, f"file of {holds} as {format_name}")
+
+
+# --- words as NumPy and struct pack them --------------------------------------------------------------------
+
+
+def packed(format_name, justification, order, code):
+    """Through bytes of Python's own integers and NumPy's types."""
+    bits_count = WORD_BITS.get(format_name, 32)
+    size = {8: 1, 12: 2, 16: 2, 24: 3 if justification == "packed" else 4, 32: 4}[bits_count]
+    if justification == "left":
+        code *= 2 ** (8 * size - bits_count)
+    return code.to_bytes(size, order, signed=format_name[0] != "u")
+
+
+def test_formats(rng):
+    layouts = [(name, "right") for name in [*WORD_BITS, "f32"]] + [("u12", "left"), ("i24", "left"), ("i24", "packed")]
+    for name, justification in layouts:
+        bits_count = WORD_BITS.get(name, 32)
+        low = 0 if name[0] == "u" else -2 ** (bits_count - 1)
+        codes = [rng.randrange(low, low + 2**bits_count) for _ in range(200)] + [low, low + 2**bits_count - 1, low + 1]
+        for order in ("little", "big"):
+            expected = b"".join(packed(name, justification, order, c) for c in codes)
+            sent, read = ask([f"bytes {name} {justification} {order} {' '.join(map(str, codes))}",
+                              f"read {name} {justification} {order} {expected.hex()}"])
+            check(bytes.fromhex(sent) == expected, f"{name} {justification} {order} is sent")
+            check(read.split() == [str(c) for c in codes], f"{name} {justification} {order} is read")
+            kind = {"q15": "i2", "i16": "i2", "u12": "u2", "u16": "u2", "q31": "i4", "i32": "i4", "i24": "i4"}.get(name)
+            if kind and justification != "packed":
+                array = np.frombuffer(expected, ("<" if order == "little" else ">") + kind).astype(np.int64)
+                if justification == "left":
+                    array = array // 2 ** (8 * np.dtype(kind).itemsize - bits_count)
+                check(array.tolist() == codes, f"{name} {justification} {order} as NumPy reads it")
+        if name == "f32":
+            floats = [rng.uniform(-2, 2) for _ in range(100)] + [0.1, 1e-40, -0.0]
+            answer = ask([f"code f32 floor {' '.join(map(repr, floats))}"])[0]
+            check([int(w) for w in answer.split()] == np.array(floats, np.float32).view(np.int32).tolist(), "f32 codes")
+            continue
+        values = [float.fromhex(w) for w in ask([f"value {name} {' '.join(map(str, codes))}"])[0].split()]
+        zero = 2 ** (bits_count - 1) if name[0] == "u" else 0
+        step = 2.0 ** (1 - bits_count) if name[0] == "q" else 1.0
+        check(values == [(c - zero) * step for c in codes], f"values of {name}")
+        back = ask([f"code {name} floor {' '.join(map(repr, values))}"])[0]
+        check(back.split() == [str(c) for c in codes], f"codes of the values of {name}")
+
+
 # --- NPY headers against NumPy -----------------------------------------------------------------------
 
 
 def test_npy():
-    types = {"<i2": np.int16, "<i4": np.int32, "<f4": np.float32, "<f8": np.float64}
+    types = {"|i1": np.int8, "|u1": np.uint8, "<u2": np.uint16, "<i2": np.int16, "<i4": np.int32, "<i8": np.int64,
+             "<f4": np.float32, "<f8": np.float64}
     for name, kind in types.items():
         for count in (0, 1, 7, 123_456):
-            header = bytes.fromhex(ask([f"npy {name} {count}"])[0])
+            header = bytes.fromhex(ask([f"npy {name} {count} 1"])[0])
             data = np.arange(count).astype(kind)
             loaded = np.load(io.BytesIO(header + data.tobytes()))
+            rows = bytes.fromhex(ask([f"npy {name} {count} 3"])[0])
+            table = np.load(io.BytesIO(rows + np.arange(3 * count).astype(kind).tobytes()))
+            check(table.shape == (count, 3), f"NumPy reads our header of {count} rows of 3 {name}")
             check(len(header) == 128 and loaded.dtype == data.dtype and np.array_equal(loaded, data),
                   f"NumPy reads our header of {count} {name}")
             for version in ((1, 0), (2, 0)):
@@ -253,10 +525,11 @@ def test_npy():
                 np.lib.format.write_array(buffer, data, version=version)
                 offset = len(buffer.getvalue()) - data.nbytes
                 answer = ask(["parse " + buffer.getvalue()[:offset].hex()])[0]
-                check(answer == f"{name} {count} {offset}", f"we read NumPy's header {version} {name}: {answer}")
+                check(answer == f"{name} {count} 1 {offset}", f"we read NumPy's header {version} {name}: {answer}")
     refused = {
         ">i2": (np.zeros(3, ">i2"), "byte 20: elements of type '>i2' are not taken"),
-        "2-D": (np.zeros((3, 2), order="F"), "byte 59: the array has 2 dimensions"),
+        "2-D": (np.zeros((3, 2), order="F"), "byte 10: several channels in Fortran order"),
+        "3-D": (np.zeros((3, 2, 1)), "byte 60: the array has 3 dimensions"),
         "0-D": (np.float64(1.0), "byte 60: the array has 0 dimensions"),
         "complex": (np.zeros(3, complex), "byte 20: elements of type '<c16' are not taken"),
         "records": (np.zeros(3, [("a", "<i2")]), "byte 20: elements are records"),
@@ -277,8 +550,17 @@ def main():
     test_chirps()
     test_chirps_against_scipy()
     test_noise()
+    test_ramps()
+    test_squares()
+    test_bursts()
+    test_prbs()
+    test_compounds()
+    test_files(rng)
+    test_formats(rng)
     test_npy()
+    check(different_31 * 100_000 < samples_31, f"{different_31} of {samples_31} 32-bit codes differ")
     check(hashes_met == set(SAME_CODES), f"hashes never met: {set(SAME_CODES) - hashes_met}")
+    print(f"{different_31} of {samples_31} codes of 32 bits differ")
     print(f"{checks} checks, {failures} failed; questions drawn with seed {SEED}, "
           f"NumPy {np.__version__}, mpmath at {mp.dps} digits")
     return 1 if failures else 0

@@ -16,13 +16,14 @@ const std::int64_t ten = 10;
 
 TEST_CASE("refusal: a shape nobody knows", "[stimuli]") {
     CHECK(refusal("stpe", {}) ==
-          "shape: no stimulus is called \"stpe\"\n  Shapes: step, impulse, chirp, noise, sine, multitone.");
+          "shape: no stimulus is called \"stpe\"\n  Shapes: step, impulse, silence, ramp, square, chirp, noise, prbs, "
+          "sine, multitone, burst, file, sequence.");
 }
 
 TEST_CASE("refusal: names and types that do not fit the table", "[stimuli]") {
     CHECK(refusal("step", {{"length_samples", ten}, {"lenght", ten}}) ==
           "lenght: \"step\" has no such parameter\n"
-          "  Parameters: length_samples, at_samples, level_ratio, level_codes.");
+          "  Parameters: length_samples, at_samples, level_ratio, level_codes, level_unit, add.");
     CHECK(refusal("step", {}) == "length_samples: is missing, and \"step\" needs it\n  Give a whole number.");
     CHECK(refusal("step", {{"length_samples", 10.0}}) == "length_samples: needs a whole number");
     CHECK(refusal("step", {{"length_samples", ten}, {"level_ratio", std::string("half")}}) ==
@@ -64,9 +65,9 @@ TEST_CASE("refusal: a level beyond full scale, not a number, or silence where th
     CHECK(refusal("step", {{"length_samples", ten}, {"level_ratio", 0.0}}) == "accepted");
     CHECK(refusal("step", {{"length_samples", ten}, {"level_ratio", std::int64_t{-1}}}) == "accepted");
     CHECK(refusal("noise", {{"length_samples", ten}, {"level_ratio", 0.0}}) ==
-          "level_ratio: 0 is silence\n  Give a level above 0.");
+          "level_ratio: 0 of full scale is not above 0 of full scale\n  Give more than 0.");
     CHECK(refusal("noise", {{"length_samples", ten}, {"level_ratio", -0.5}}) ==
-          "level_ratio: -0.5 of full scale is below the least, 0 of full scale\n  Give 0 or more.");
+          "level_ratio: -0.5 of full scale is not above 0 of full scale\n  Give more than 0.");
 }
 
 TEST_CASE("refusal: a level in codes that the format does not have, or beside a ratio", "[stimuli]") {
@@ -95,10 +96,9 @@ TEST_CASE("refusal: frequencies at and below 0 Hz or above Nyquist", "[stimuli]"
         return refusal("sine", {{"length_samples", ten}, {"frequency_hz", frequency_hz}, {"phase_turns", phase_turns}},
                        1200.0);
     };
-    CHECK(sine(0.0) ==
-          "frequency_hz: 0 Hz is not above 0 Hz\n  Give a frequency above 0 Hz and not above Nyquist, 600 Hz.");
+    CHECK(sine(0.0) == "frequency_hz: 0 Hz is not above 0 Hz\n  Give more than 0.");
     CHECK(sine(5e-324) == "accepted");
-    CHECK(sine(-1.0) == "frequency_hz: -1 Hz is below the least, 0 Hz\n  Give 0 or more.");
+    CHECK(sine(-1.0) == "frequency_hz: -1 Hz is not above 0 Hz\n  Give more than 0.");
     CHECK(sine(600.0) == "accepted");
     CHECK(sine(600.0000000000001) ==
           "frequency_hz: 600.0000000000001 Hz is above Nyquist, 600 Hz at rate_hz = 1200\n"
@@ -113,8 +113,7 @@ TEST_CASE("refusal: frequencies at and below 0 Hz or above Nyquist", "[stimuli]"
     const auto chirp = [](double from_hz, double to_hz) {
         return refusal("chirp", {{"length_samples", ten}, {"from_hz", from_hz}, {"to_hz", to_hz}}, 1200.0);
     };
-    CHECK(chirp(0.0, 100.0) ==
-          "from_hz: 0 Hz is not above 0 Hz\n  Give a frequency above 0 Hz and not above Nyquist, 600 Hz.");
+    CHECK(chirp(0.0, 100.0) == "from_hz: 0 Hz is not above 0 Hz\n  Give more than 0.");
     CHECK(chirp(100.0, 700.0) ==
           "to_hz: 700 Hz is above Nyquist, 600 Hz at rate_hz = 1200\n"
           "  Give a frequency not above Nyquist, or correct rate_hz.");

@@ -1,10 +1,10 @@
-#include "stimuli/number_text.hpp"
 #include "stimuli/values_check.hpp"
 
 #include <catch2/catch.hpp>
 #include <limits>
 
-#include "stimuli/stimulus.hpp"
+#include "make.hpp"
+#include "stimuli/number_text.hpp"
 
 using namespace halflsb;
 
@@ -20,6 +20,10 @@ const Recipe recipe = {
             {.name = "rows", .type = ParameterType::sections, .help = "h"},
             {.name = "kind", .type = ParameterType::choice, .choices = {"first", "second"}, .help = "h"},
             {.name = "count", .type = ParameterType::integer, .default_value = 3.0, .help = "h"},
+            {.name = "channels", .type = ParameterType::integers, .minimum = 1.0, .maximum = 16.0, .help = "h"},
+            {.name = "gain", .type = ParameterType::real, .minimum = 0.0, .above_minimum = true, .help = "h"},
+            {.name = "recording", .type = ParameterType::signal_file, .help = "h"},
+            {.name = "parts", .type = ParameterType::stimuli, .help = "h"},
             {.name = "must", .type = ParameterType::real, .required = true, .help = "h"},
         },
 };
@@ -55,6 +59,22 @@ TEST_CASE("values check: each type takes its own values only", "[stimuli]") {
     CHECK(checked("count", 7.0) == "count: needs a whole number");
     CHECK(checked("must", std::int64_t{7}) == "fits");
     CHECK(misfit_of(recipe, {})->place == "must");
+    CHECK(checked("channels", Numbers{1.0, 16.0}) == "fits");
+    CHECK(checked("channels", Numbers{1.0, 17.0}) == "channels: 17 is above the largest, 16\n  Give 16 or less.");
+    CHECK(checked("channels", Numbers{1.0, 2.5}) == "channels: 2.5 is no whole number\n  Give whole numbers.");
+    CHECK(checked("channels", std::int64_t{1}) == "channels: needs an array of numbers");
+    CHECK(checked("gain", 5e-324) == "fits");
+    CHECK(checked("gain", 0.0) == "gain: 0 is not above 0\n  Give more than 0.");
+    CHECK(checked("gain", std::int64_t{0}) == "gain: 0 is not above 0\n  Give more than 0.");
+    CHECK(checked("gain", -0.0) == "gain: -0 is not above 0\n  Give more than 0.");
+    CHECK(checked("recording", std::make_shared<const SignalFile>()) == "fits");
+    CHECK(checked("recording", std::shared_ptr<const SignalFile>()) == "recording: needs the samples of a file");
+    CHECK(checked("recording", std::string("a.csv")) == "recording: needs the samples of a file");
+    CHECK(checked("parts", std::shared_ptr<const std::vector<StimulusWords>>()) == "parts: needs an array of stimuli");
+    CHECK(checked("parts", Numbers{1.0}) == "parts: needs an array of stimuli");
+    CHECK(checked("parts", list({words("step", {{"length_samples", std::int64_t{1}}})})) == "fits");
+    CHECK(checked("parts", list({words("step", {{"length_samples", 1.0}})})) ==
+          "parts[1].length_samples: needs a whole number");
 }
 
 TEST_CASE("parameter values: the plan's value, else the default, else nothing", "[stimuli]") {
@@ -103,7 +123,8 @@ TEST_CASE("catalogue: every shape and parameter explains itself in one sentence"
             CHECK(parameter.choices.empty() == (parameter.type != ParameterType::choice));
         }
     }
-    CHECK(names == std::vector<std::string_view>{"step", "impulse", "chirp", "noise", "sine", "multitone"});
+    CHECK(names == std::vector<std::string_view>{"step", "impulse", "silence", "ramp", "square", "chirp", "noise",
+                                                 "prbs", "sine", "multitone", "burst", "file", "sequence"});
     CHECK(find_recipe(stimulus_recipes(), "nothing") == nullptr);
 }
 

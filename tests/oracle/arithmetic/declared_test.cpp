@@ -2,6 +2,7 @@
 
 #include <limits>
 
+#include "oracle/arithmetic/word_ends.hpp"
 #include "oracle/filters/coefficients.hpp"
 #include "tests/oracle/support.hpp"
 
@@ -102,4 +103,114 @@ TEST_CASE("declared: reset, splits and in-place runs as every filter", "[arithme
         CHECK(same_bits(both, whole));
     }
     CHECK_FALSE(same_bits(whole, run(chain, in)));
+}
+
+namespace {
+
+FilterStage with_words(FilterStage stage, const char* format, Overflow overflow = Overflow::saturate) {
+    if (format != nullptr) stage.arithmetic.stage_format = *sample_format(format);
+    stage.arithmetic.output_overflow = overflow;
+    return stage;
+}
+
+std::vector<double> through(const char* format, Overflow overflow, std::vector<double> values) {
+    WordEnds(*sample_format(format), overflow).apply(values);
+    return values;
+}
+
+}  // namespace
+
+TEST_CASE("word ends: wrapping comes in again at the other end, both sides of each end", "[arithmetic]") {
+    const double lsb = 0x1p-15, top = 1.0 - lsb, below = std::nextafter(1.0, 0.0);
+    CHECK(through("q15", Overflow::wrap, {-1.0, top, below, 1.0, 1.0 + lsb, -1.0 - lsb, 2.5, 3.0, -3.0, 1e6 + 0.25}) ==
+          std::vector<double>{-1.0, top, below, -1.0, -1.0 + lsb, 1.0 - lsb, 0.5, -1.0, -1.0, 0.25});
+    CHECK(through("i16", Overflow::wrap, {32767.5, 32768.0, -32768.0, -32769.0, 100000.0}) ==
+          std::vector<double>{32767.5, -32768.0, -32768.0, 32767.0, 100000.0 - 131072.0});
+    CHECK(through("q15", Overflow::saturate, {-1.5, -1.0, top, below, 7.0}) ==
+          std::vector<double>{-1.0, -1.0, top, top, top});
+    const double infinity = std::numeric_limits<double>::infinity(), nan = std::numeric_limits<double>::quiet_NaN();
+    CHECK(std::isnan(through("q15", Overflow::wrap, {nan})[0]));
+    CHECK(std::isnan(through("q15", Overflow::wrap, {infinity})[0]));
+    CHECK(through("q15", Overflow::saturate, {infinity})[0] == top);
+    CHECK(through("f32", Overflow::wrap, {1e300})[0] == static_cast<double>(std::numeric_limits<float>::max()));
+}
+
+TEST_CASE("declared: a stage overflows on its way to the next", "[arithmetic]") {
+    const FilterStage loud = stage(Fir{{4.0}}), quiet = stage(Fir{{0.25}});
+    const std::vector<double> in{0.1, 0.5, -0.5, 0.3};
+    const double top = 1.0 - 0x1p-15;
+    const auto declared = [&](const FilterChain& chain) {
+        return run(*make_declared_filter(chain, *sample_format("q15"), 1.0), in);
+    };
+    CHECK(declared({loud, quiet}) == in);  // wide enough for anything
+    CHECK(declared({with_words(loud, "q15"), quiet}) == std::vector<double>{0.1, top / 4.0, -0.25, top / 4.0});
+    CHECK(declared({with_words(loud, "q15", Overflow::wrap), quiet}) ==
+          std::vector<double>{0.1, 0.0, 0.0, (4.0 * 0.3 - 2.0) / 4.0});
+    // Three stages, two of them with ends: the first saturates what the second would wrap.
+    CHECK(declared({with_words(loud, "q15"), with_words(stage(Fir{{2.0}}), "q15", Overflow::wrap), quiet}) ==
+          std::vector<double>{0.2, (2.0 * top - 2.0) / 4.0, 0.0, (2.0 * top - 2.0) / 4.0});
+}
+
+TEST_CASE("declared: the last stage's words are those of the output", "[arithmetic]") {
+    const FilterStage loud = stage(Fir{{4.0}});
+    const std::vector<double> in{0.1, 0.5};
+    const auto declared = [&](const FilterStage& last, const char* output, double gain) {
+        return run(*make_declared_filter({last}, *sample_format(output), gain), in);
+    };
+    CHECK(declared(with_words(loud, "q15", Overflow::wrap), "i16", 32768.0) ==
+          std::vector<double>{0.1 * 4.0 * 32768.0, -32768.0 + 32768.0});
+    CHECK(declared(with_words(loud, "q15"), "i32", 32768.0) == std::vector<double>{0.1 * 4.0 * 32768.0, 65536.0});
+    CHECK(declared(with_words(loud, nullptr, Overflow::wrap), "q15", 1.0) == std::vector<double>{0.4, 0.0});
+}
+
+TEST_CASE("declared: a stage's state runs on behind its clipped output", "[arithmetic]") {
+    const FilterStage integrator = stage(BiquadCascade{{{1.0, 0.0, 0.0, -0.75, 0.0}}});
+    const FilterChain chain{with_words(integrator, "q15"), stage(Fir{{0.5}})};
+    std::vector<double> in(40, 0.0);
+    for (std::size_t n = 0; n < 10; ++n) in[n] = 0.9;
+    const auto ideal = run({integrator}, in), got = run(*make_declared_filter(chain, *sample_format("q15"), 1.0), in);
+    for (std::size_t n = 0; n < in.size(); ++n) REQUIRE(got[n] == 0.5 * std::min(ideal[n], 1.0 - 0x1p-15));
+}
+
+TEST_CASE("declared: stages with ends run in any blocks, in place, and after reset, and hide no NaN", "[arithmetic]") {
+    const FilterChain chain{with_words(stage(Fir{noise(30, 61)}, 4), "q15"),
+                            with_words(stage(Comb{37, 1.0, 0.5, -0.6}, 5), "q15", Overflow::wrap),
+                            with_words(stage(BiquadCascade{{cookbook(Shape::low_pass, 0.1, 2.0)}}, 12), "q15")};
+    auto in = noise(3001, 62);
+    const auto filter = make_declared_filter(chain, *sample_format("q15"), 0.5);
+    const auto whole = run(*filter, in);
+    FilterChain wide = chain;
+    for (FilterStage& each : wide) each.arithmetic.stage_format.reset();
+    CHECK_FALSE(same_bits(whole, run(*make_declared_filter(wide, *sample_format("q15"), 0.5), in)));
+    for (const Split split : every_split) {
+        filter->reset();
+        auto both = in;
+        for_blocks(split, in.size(), [&](std::size_t first, std::size_t count) {
+            const auto block = std::span(both).subspan(first, count);
+            filter->process(block, block);
+        });
+        CHECK(same_bits(both, whole));
+    }
+    in[5] = std::numeric_limits<double>::quiet_NaN();
+    filter->reset();
+    CHECK(std::isnan(run(*filter, in).back()));
+}
+
+TEST_CASE("declared: each channel by its own chain", "[arithmetic]") {
+    FilterChain chain{stage(Fir{{0.5}}), stage(Fir{{0.3}}, 2), stage(MovingAverage{2})};
+    chain[1].channels = {2};
+    const std::vector<double> in{0.75, 0.25};  // every sum below is exact
+    const auto of = [&](int channel) {
+        return run(*make_declared_filter(chain_of_channel(chain, channel), *sample_format("q15"), 1.0), in);
+    };
+    CHECK(of(1) == std::vector<double>{0.1875, 0.25});
+    CHECK(of(2) == std::vector<double>{0.046875, 0.0625});
+}
+
+TEST_CASE("declared: a one-pole rounds its k, its gain stays 1", "[arithmetic]") {
+    FilterStage one_pole = stage(BiquadCascade{{{0.1, 0.0, 0.0, -0.9, 0.0}}}, 4);
+    one_pole.kind = "one-pole";
+    const FilterChain declared = declared_chain({one_pole});
+    const BiquadSection& s = std::get<BiquadCascade>(declared[0].design).sections[0];
+    CHECK((s.b0 == 0.125 && s.a1 == -0.875));
 }

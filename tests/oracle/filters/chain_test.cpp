@@ -1,5 +1,8 @@
 #include "oracle/filters/chain.hpp"
 
+#include <algorithm>
+#include <limits>
+
 #include "tests/oracle/support.hpp"
 
 using namespace halflsb;
@@ -25,7 +28,14 @@ std::vector<Named> every_kind() {
         {"fir of 2100", {stage(Fir{noise(2100, 32)})}},
         {"low cascade", {stage(low)}},
         {"high cascade", {stage(high)}},
-        {"all kinds", {stage(Fir{noise(33, 33)}), stage(low), stage(MovingAverage{10}), stage(high)}},
+        {"comb both ways", {stage(Comb{7, 0.8, -0.5, 0.9})}},
+        {"comb backward of 1", {stage(Comb{1, 0.2, 0.0, -0.8})}},
+        {"comb forward of 1500", {stage(Comb{1500, 1.0, 0.5, 0.0})}},
+        {"one-pole", {stage(BiquadCascade{{{0x1p-6, 0.0, 0.0, 0x1p-6 - 1.0, 0.0}}})}},
+        {"DC blocker", {stage(BiquadCascade{{{1.0, -1.0, 0.0, -0.995, 0.0}}})}},
+        {"all kinds",
+         {stage(Fir{noise(33, 33)}), stage(low), stage(MovingAverage{10}), stage(high),
+          stage(Comb{300, 1.0, 0.3, -0.4})}},
     };
 }
 
@@ -55,7 +65,7 @@ TEST_CASE("filter: reset equals fresh", "[filters]") {
         const auto first = run(*filter, before);
         filter->reset();
         CHECK(same_bits(run(*filter, in), run(chain, in)));
-        if (!chain.empty() && std::string(name).find("of 1") == std::string::npos) {
+        if (!chain.empty() && name != std::string("moving average of 1") && name != std::string("fir of 1")) {
             filter->reset();
             (void)run(*filter, before);
             CHECK_FALSE(same_bits(run(*filter, in), run(chain, in)));  // without reset the past shows
@@ -112,4 +122,35 @@ TEST_CASE("chain: stages follow one another", "[filters]") {
     const auto in = noise(500, 48);
     const auto inner = run(FilterChain{first}, in);
     CHECK(same_bits(run({first, second}, in), run(FilterChain{second}, inner)));
+}
+
+TEST_CASE("filter: a NaN shows until it is forgotten or reset", "[filters]") {
+    std::vector<double> in(4000, 0.0);
+    in[3] = std::numeric_limits<double>::quiet_NaN();
+    for (const auto& [name, chain] : every_kind()) {
+        INFO(name);
+        const auto filter = make_filter(chain);
+        const auto out = run(*filter, in);
+        CHECK(std::isnan(out[3]));
+        if (largest_pole_radius(chain) > 0.0)
+            CHECK(std::any_of(out.end() - 400, out.end(), [](double y) { return std::isnan(y); }));
+        filter->reset();
+        CHECK(run(*filter, std::vector<double>(600, 0.0)).back() == 0.0);
+    }
+}
+
+TEST_CASE("chain: a channel passes the stages that name it or none", "[filters]") {
+    FilterChain chain{stage(MovingAverage{2}), stage(MovingAverage{3}), stage(MovingAverage{4})};
+    chain[1].channels = {2};
+    chain[2].channels = {3, 1};
+    const auto points = [&](int channel) {
+        std::vector<int> list;
+        for (const FilterStage& each : chain_of_channel(chain, channel))
+            list.push_back(std::get<MovingAverage>(each.design).points);
+        return list;
+    };
+    CHECK(points(1) == std::vector<int>{2, 4});
+    CHECK(points(2) == std::vector<int>{2, 3});
+    CHECK(points(3) == std::vector<int>{2, 4});
+    CHECK(points(4) == std::vector<int>{2});
 }

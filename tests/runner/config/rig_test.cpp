@@ -41,6 +41,7 @@ TEST_CASE("rig: a good one is read with its defaults", "[config]") {
     CHECK(rig.greet_s == 5.0);
     CHECK(rig.before_run.empty());
     CHECK(rig.before_run_limit_s == 120.0);
+    CHECK(rig.attempts == 1);
     CHECK(!wants_image(rig));
 }
 
@@ -65,6 +66,22 @@ TEST_CASE("rig: every word is taken", "[config]") {
     CHECK(rig.before_run_limit_s == 3.0);
     CHECK(rig_of(with(good_rig, "usb:0403:6001", "/dev/ttyUSB0")).port == "/dev/ttyUSB0");
     CHECK(rig_of(with(good_rig, "usb:0403:6001", "usb:0403:6001:A5 02")).port == "usb:0403:6001:A5 02");
+}
+
+TEST_CASE("rig: an invalid case may run up to ten times", "[config]") {
+    CHECK(rig_of(good_rig + "[run]\n").attempts == 1);
+    CHECK(rig_of(good_rig + "[run]\nattempts = 1\n").attempts == 1);
+    CHECK(rig_of(good_rig + "[run]\nattempts = 10\n").attempts == 10);
+    const auto refusal = [](const std::string& line, const std::string& at, const std::string& problem,
+                            const std::string& remedy) {
+        const std::string text = good_rig + "[run]\n" + line + "\n";
+        CHECK(rig_problems(text) == message(text, 10, at, problem, remedy));
+    };
+    refusal("attempts = 0", "0", "attempts = 0 is below 1", "give a whole number from 1 to 10");
+    refusal("attempts = 11", "11", "attempts = 11 is above 10", "give a whole number from 1 to 10");
+    refusal("attempts = 2.0", "2.0", "attempts is the number 2.0, wanted a whole number",
+            "write attempts = 16, without a decimal point and without quotation marks");
+    refusal("attempt = 2", "attempt", "unknown key \"attempt\" in [run]", "did you mean attempts?");
 }
 
 TEST_CASE("rig: without the statement that the board is isolated nothing is streamed", "[config]") {

@@ -1,0 +1,110 @@
+// `add`: stimuli on top of another one, sample by sample, in the order of the list.
+#include <algorithm>
+#include <array>
+
+#include "stimuli/shape.hpp"
+
+namespace halflsb {
+
+namespace {
+
+/// Ascending; those that stand there twice are left out, because two sines of one frequency may cancel.
+std::vector<double> once_only(std::vector<double> tones) {
+    std::sort(tones.begin(), tones.end());
+    std::vector<double> single;
+    for (std::size_t i = 0; i < tones.size();) {
+        std::size_t next = i + 1;
+        while (next < tones.size() && tones[next] == tones[i]) ++next;
+        if (next == i + 1) single.push_back(tones[i]);
+        i = next;
+    }
+    return single;
+}
+
+class Sum final : public Stimulus {
+public:
+    explicit Sum(std::vector<std::unique_ptr<const Stimulus>> summands) : summands_(std::move(summands)) {}
+
+    std::int64_t length_samples() const override { return summands_.front()->length_samples(); }
+
+    void fill(std::int64_t first_index, std::span<double> ratios) const override {
+        constexpr std::size_t chunk_samples = 256;
+        std::array<double, chunk_samples> addend{};
+        summands_.front()->fill(first_index, ratios);
+        for (std::size_t k = 1; k < summands_.size(); ++k) {
+            for (std::size_t done = 0; done < ratios.size();) {
+                const std::size_t count = std::min(chunk_samples, ratios.size() - done);
+                summands_[k]->fill(first_index + static_cast<std::int64_t>(done), std::span(addend).first(count));
+                for (std::size_t i = 0; i < count; ++i) ratios[done + i] += addend[i];
+                done += count;
+            }
+        }
+    }
+
+    /// What the summands have. The tones of one that ends early are left out: they are lines only while
+    /// they last, and the estimate takes the whole record.
+    Spectrum spectrum() const override {
+        Spectrum all;
+        for (const auto& summand : summands_) {
+            const Spectrum each = summand->spectrum();
+            all.bands.insert(all.bands.end(), each.bands.begin(), each.bands.end());
+            if (summand->length_samples() < length_samples()) continue;
+            all.tones.insert(all.tones.end(), each.tones.begin(), each.tones.end());
+        }
+        return {joined_bands(std::move(all.bands)), once_only(std::move(all.tones))};
+    }
+
+private:
+    std::vector<std::unique_ptr<const Stimulus>> summands_;  ///< the first is the longest
+};
+
+}  // namespace
+
+std::vector<Spectrum::Band> joined_bands(std::vector<Spectrum::Band> bands) {
+    std::sort(bands.begin(), bands.end(), [](const Spectrum::Band& left, const Spectrum::Band& right) {
+        return left.from_cycles_per_sample < right.from_cycles_per_sample;
+    });
+    std::vector<Spectrum::Band> apart;
+    for (const Spectrum::Band& band : bands) {
+        if (apart.empty() || band.from_cycles_per_sample > apart.back().to_cycles_per_sample) {
+            apart.push_back(band);
+        } else {
+            double& end = apart.back().to_cycles_per_sample;
+            end = std::max(end, band.to_cycles_per_sample);
+        }
+    }
+    return apart;
+}
+
+Parameter add_parameter() {
+    return {
+        .name = "add",
+        .type = ParameterType::stimuli,
+        .help =
+            "Stimuli added to this one, each with its shape, none longer; integer formats saturate beyond full scale."};
+}
+
+StimulusOutcome make_sum(std::unique_ptr<const Stimulus> base, const std::vector<StimulusWords>& added,
+                         const StimulusContext& context) {
+    StimulusContext inner = context;
+    inner.default_length_samples = base->length_samples();
+    std::vector<std::unique_ptr<const Stimulus>> summands;
+    summands.push_back(std::move(base));
+    for (std::size_t i = 0; i < added.size(); ++i) {
+        auto summand = make_fitting_stimulus(added[i].shape, added[i].values, inner);
+        if (!summand) return inside("add", i, summand.error());
+        const std::int64_t longest = summands.front()->length_samples();
+        const std::int64_t length = (*summand)->length_samples();
+        if (length > longest) {
+            return inside("add", i,
+                          refused(added[i].values.has("parts") ? "parts" : "length_samples",
+                                  std::to_string(length) + " samples are longer than the " + std::to_string(longest) +
+                                      " that they are added to",
+                                  "Give at most " + std::to_string(longest) + "."));
+        }
+        summands.push_back(std::move(*summand));
+    }
+    return std::unique_ptr<const Stimulus>(std::make_unique<Sum>(std::move(summands)));
+}
+
+}  // namespace halflsb
