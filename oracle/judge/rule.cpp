@@ -129,7 +129,7 @@ std::string to_text(const PlanPosition& position) {
 
 const std::vector<Recipe>& rule_recipes() {
     const auto limit = [](std::string_view name, std::string_view unit, std::string_view help) {
-        return Parameter{name, ParameterType::real, unit, 0.0, no_limit, false, std::nullopt, {}, help};
+        return Parameter{name, ParameterType::real, unit, 0.0, no_limit, false, false, std::nullopt, {}, help};
     };
     static const std::vector<Recipe> recipes{
         {"error",
