@@ -1,3 +1,5 @@
+#include <algorithm>
+#include <set>
 #include <variant>
 
 #include "runner/cli/exit_status.hpp"
@@ -7,6 +9,8 @@
 #include "runner/config/plan_file.hpp"
 #include "runner/config/repository.hpp"
 #include "runner/config/rig_file.hpp"
+#include "runner/record/run_folder.hpp"
+#include "runner/record/run_json.hpp"
 #include "runner/report/terminal_report.hpp"
 #include "runner/run_plan.hpp"
 #include "runner/world/interrupt.hpp"
@@ -46,6 +50,10 @@ public:
     }
     void ended(const RunResult& run) {
         live_.erase();
+        if (desk_.answer != nullptr) {
+            if (run.ended_by) desk_.answer->set_error(*run.ended_by);
+            if (!run.folder.empty()) desk_.answer->add_run(run_json(run, true));
+        }
         // The summary tells it too: on one terminal once is enough, a log of standard error needs it.
         const bool one_terminal = desk_.terminal.is_terminal(Stream::out) && desk_.terminal.is_terminal(Stream::err);
         if (run.ended_by && (run.folder.empty() || !one_terminal)) err(error_text(*run.ended_by, error_style_));
@@ -57,11 +65,11 @@ public:
 private:
     void out(const std::string& text) {
         live_.erase();
-        if (auto written = desk_.terminal.write(Stream::out, text); !written && !lost_) lost_ = written.error();
+        if (auto written = say(desk_, text); !written && !lost_) lost_ = written.error();
     }
     void err(const std::string& text) {
         live_.erase();
-        (void)desk_.terminal.write(Stream::err, text);
+        if (desk_.answer == nullptr) (void)desk_.terminal.write(Stream::err, text);
     }
 
     const Desk& desk_;
@@ -72,58 +80,118 @@ private:
     std::optional<Error> lost_;
 };
 
-/// Both files are read before anything is said, so that all their problems are told at once.
-Outcome<RunRequest> read_request(const Options& options, const Desk& desk, std::vector<std::string>& problems) {
-    RunRequest request;
-    request.tool_version = tool_version;
-    auto plan = read_plan(options.plan, desk.files, {options.root.value_or(""), options.seed});
-    auto rig = read_rig(options.rig, desk.files);
-    if (auto* wrong = std::get_if<ReadProblems>(&plan)) problems = std::move(wrong->texts);
-    if (auto* wrong = std::get_if<ReadProblems>(&rig))
-        problems.insert(problems.end(), wrong->texts.begin(), wrong->texts.end());
-    if (!problems.empty()) return request;
-    request.plan = std::move(std::get<Plan>(plan));
-    request.rig = std::move(std::get<Rig>(rig));
-    for (const auto& [path, text] :
-         {std::pair{&options.plan, &request.plan_text}, std::pair{&options.rig, &request.rig_text}}) {
-        auto read = desk.files.read(*path, largest_config_bytes);
-        if (!read) return read.error();
-        *text = std::move(*read);
-    }
-    auto selected = selected_cases(request.plan, options);
-    if (!selected) return selected.error();
-    request.selected = std::move(*selected);
+/// What differs from rig to rig: everything of a request but the plan.
+Outcome<void> read_rig_into(RunRequest& request, const std::string& path, Rig rig, const Options& options,
+                            const Desk& desk) {
+    request.rig = std::move(rig);
+    auto text = desk.files.read(path, largest_config_bytes);
+    if (!text) return text.error();
+    request.rig_text = std::move(*text);
     if (options.image) {
         auto build_id = read_build_id(*options.image, desk.files);
         if (!build_id) return build_id.error();
         // Commands run in the rig's folder: a relative path would mean another file there.
         request.image = Image{desk.files.resolved(*options.image), *build_id};
     } else if (wants_image(request.rig)) {
-        return Error{ErrorKind::usage, options.rig, "before_run needs {image}, and there is no --image",
+        return Error{ErrorKind::usage, path, "before_run needs {image}, and there is no --image",
                      "give the image to flash: --image FIRMWARE.elf"};
     }
-    if (auto warning = rig_in_repository_warning(options.rig, options.plan, desk.files))
-        request.warnings.push_back(*warning);
-    request.out = options.out;
-    request.seed = options.seed;
-    request.root = options.root;
-    return request;
+    if (auto warning = rig_in_repository_warning(path, options.plan, desk.files)) request.warnings.push_back(*warning);
+    return {};
+}
+
+std::string stem_of(const std::string& path) {
+    std::string stem = path.substr(path.rfind('/') + 1);
+    stem.resize(std::min(stem.rfind('.'), stem.size()));
+    return file_name_part(stem);
+}
+
+/// Where each run goes when there are several: below --out a folder for each rig, else the default's name with the
+/// rig's at its end.
+void name_folders(std::vector<RunRequest>& requests, const Options& options) {
+    if (requests.size() < 2) return;
+    std::set<std::string> taken;
+    for (RunRequest& request : requests) {
+        const std::string stem = stem_of(request.rig.file);
+        std::string name = stem;
+        for (int i = 2; !taken.insert(name).second; ++i) name = stem + "-" + std::to_string(i);
+        if (options.out) request.out = *options.out + "/" + name;
+        request.folder_note = name;
+    }
+}
+
+/// All files are read before anything is said or touched, so that all their problems are told at once.
+Outcome<std::vector<RunRequest>> read_requests(const Options& options, const Desk& desk,
+                                               std::vector<std::string>& problems) {
+    std::vector<RunRequest> requests;
+    auto plan = read_plan(options.plan, desk.files, {options.root.value_or(""), options.seed});
+    if (auto* wrong = std::get_if<ReadProblems>(&plan)) problems = std::move(wrong->texts);
+    std::vector<Rig> rigs;
+    for (const std::string& path : options.rigs) {
+        auto rig = read_rig(path, desk.files);
+        if (auto* wrong = std::get_if<ReadProblems>(&rig)) {
+            problems.insert(problems.end(), wrong->texts.begin(), wrong->texts.end());
+        } else {
+            rigs.push_back(std::move(std::get<Rig>(rig)));
+        }
+    }
+    if (!problems.empty()) return requests;
+    RunRequest common;
+    common.tool_version = tool_version;
+    common.plan = std::move(std::get<Plan>(plan));
+    auto text = desk.files.read(options.plan, largest_config_bytes);
+    if (!text) return text.error();
+    common.plan_text = std::move(*text);
+    auto selected = selected_cases(common.plan, options);
+    if (!selected) return selected.error();
+    common.selected = std::move(*selected);
+    common.out = options.out;
+    common.seed = options.seed;
+    common.root = options.root;
+    for (std::size_t i = 0; i < rigs.size(); ++i) {
+        requests.push_back(common);
+        if (auto read = read_rig_into(requests.back(), options.rigs[i], std::move(rigs[i]), options, desk); !read)
+            return read.error();
+    }
+    name_folders(requests, options);
+    if (requests.size() > 1 && options.out) {
+        if (auto made = open_folder_of_runs(desk.files, *options.out); !made) return made.error();
+    }
+    return requests;
 }
 
 }  // namespace
 
 int check_command(const Options& options, const Desk& desk) {
     std::vector<std::string> problems;
-    const auto request = read_request(options, desk, problems);
+    const auto requests = read_requests(options, desk, problems);
     if (!problems.empty()) return tell_problems(problems, desk);
-    if (!request) return tell(request.error(), options, desk);
+    if (!requests) return tell(requests.error(), options, desk);
     if (interrupted()) return tell(interrupted_error(options.plan), options, desk);
 
-    Reporter reporter(desk, options);
-    const RunResult run = run_plan(*request, desk.files, desk.clock, reporter);
-    reporter.ended(run);
-    const int status = exit_status_of(run);
-    if (reporter.lost() && status == 0) return tell(*reporter.lost(), options, desk);
+    std::vector<RunOfRig> runs;
+    std::vector<int> statuses;
+    std::optional<Error> lost;
+    for (const RunRequest& request : *requests) {
+        Reporter reporter(desk, options);
+        RunResult run = run_plan(request, desk.files, desk.clock, reporter);
+        reporter.ended(run);
+        statuses.push_back(exit_status_of(run));
+        runs.push_back({request.rig.file, run.counts(), run.folder, statuses.back()});
+        if (!lost) lost = reporter.lost();
+        if (stops_everything(statuses.back()) || interrupted()) break;
+    }
+    if (requests->size() > 1) {
+        for (std::size_t i = runs.size(); i < requests->size(); ++i)
+            runs.push_back({(*requests)[i].rig.file, {}, "", std::nullopt});
+        const auto written = say(desk, rigs_text(runs, style_of(desk.terminal, Stream::out, options.colour)));
+        if (!written && !lost) lost = written.error();
+        // Interrupted between two of them: the rest did not run.
+        if (statuses.size() < requests->size() && !stops_everything(exit_status_of_all(statuses)))
+            statuses.push_back(exit_status_of(interrupted_error(options.plan)));
+    }
+    const int status = exit_status_of_all(statuses);
+    if (lost && status == 0) return tell(*lost, options, desk);
     return status;
 }
 

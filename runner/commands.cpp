@@ -14,49 +14,79 @@ TextStyle style_of(const Terminal& terminal, Stream stream, ColourWish wish) {
     return {wants_colour(terminal, stream, wish), columns_for(terminal, stream), shows_unicode(terminal)};
 }
 
+Outcome<void> say(const Desk& desk, std::string_view text) {
+    return desk.answer != nullptr ? Outcome<void>() : desk.terminal.write(Stream::out, text);
+}
+
 int tell(const Error& error, const Options& options, const Desk& desk) {
-    (void)desk.terminal.write(Stream::err, error_text(error, style_of(desk.terminal, Stream::err, options.colour)));
+    if (desk.answer != nullptr) {
+        desk.answer->set_error(error);
+    } else {
+        (void)desk.terminal.write(Stream::err, error_text(error, style_of(desk.terminal, Stream::err, options.colour)));
+    }
     return exit_status_of(error);
 }
 
 int tell_problems(const std::vector<std::string>& problems, const Desk& desk) {
-    for (const std::string& problem : problems)
-        (void)desk.terminal.write(Stream::err, problem + (problem.ends_with('\n') ? "" : "\n"));
+    if (desk.answer != nullptr) {
+        desk.answer->set_problems(problems);
+    } else {
+        for (const std::string& problem : problems)
+            (void)desk.terminal.write(Stream::err, problem + (problem.ends_with('\n') ? "" : "\n"));
+    }
     return exit_status_of(Error{ErrorKind::input, "", "", ""});
 }
 
 Outcome<std::vector<std::size_t>> selected_cases(const Plan& plan, const Options& options) {
     std::vector<std::string> names;
-    for (const Case& the_case : plan.cases) names.push_back(the_case.name);
-    return select_cases(names, options.case_patterns);
+    std::vector<std::vector<std::string>> labels;
+    for (const Case& the_case : plan.cases) {
+        names.push_back(the_case.name);
+        labels.push_back(the_case.labels);
+    }
+    auto selected = select_cases(names, options.case_patterns);
+    if (!selected) return selected;
+    return select_labelled(*selected, labels, options.labels);
 }
 
 Outcome<void> check_log_path(const Options& options, const Files& files) {
     if (!options.log_file) return {};
     const std::string log = files.resolved(*options.log_file);
-    for (const std::string& input : {options.plan, options.rig, options.image.value_or("")}) {
+    std::vector<std::string> inputs = options.rigs;
+    inputs.insert(inputs.end(), {options.plan, options.image.value_or("")});
+    for (const std::string& input : inputs) {
         if (log.empty() || input.empty() || files.resolved(input) != log) continue;
         return Error{ErrorKind::usage, "--log", "it would replace " + printable(input),
                      "give the log a name of its own"};
     }
+    const std::string run = options.run.empty() ? "" : files.resolved(options.run);
+    if (!log.empty() && !run.empty() && log.compare(0, run.size() + 1, run + "/") == 0)
+        return Error{ErrorKind::usage, "--log", "it would replace a file of the run " + printable(options.run),
+                     "give the log a name outside of that folder"};
     return {};
 }
 
-int ports_command(const Desk& desk) {
+int ports_command(const Options& options, const Desk& desk) {
     const auto ports = list_ports();
-    if (!ports) return tell(ports.error(), {}, desk);
+    if (!ports) return tell(ports.error(), options, desk);
+    if (desk.answer != nullptr) {
+        std::vector<ListedPort> listed;
+        for (const PortInfo& port : *ports) listed.push_back({port.device, port.stable_name, port.description});
+        desk.answer->set_ports(listed);
+        return 0;
+    }
     if (ports->empty()) {
         (void)desk.terminal.write(Stream::err, "no serial port is plugged in\n");
         return 0;
     }
-    const TextStyle style = style_of(desk.terminal, Stream::out, ColourWish::automatic);
+    const TextStyle style = style_of(desk.terminal, Stream::out, options.colour);
     Table table{{{"device", false, 0}, {"stable name", false, 0}, {"description", false, 1}}, {}, 0};
     for (const PortInfo& port : *ports) {
         table.rows.push_back({printable(port.device), port.stable_name.empty() ? "-" : printable(port.stable_name),
                               printable(port.description)});
     }
-    const auto written = desk.terminal.write(Stream::out, laid_out(style, table));
-    return written ? 0 : tell(written.error(), {}, desk);
+    const auto written = say(desk, laid_out(style, table));
+    return written ? 0 : tell(written.error(), options, desk);
 }
 
 }  // namespace halflsb

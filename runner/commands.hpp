@@ -1,12 +1,15 @@
-// The commands of the program: each turns options into text on the terminal and an exit status.
+// The commands of the program: each turns options into text on the terminal (or the one document of --json) and an exit
+// status.
 #pragma once
 
 #include <string>
+#include <string_view>
 #include <vector>
 
 #include "oracle/judge/plan.hpp"
 #include "runner/cli/options.hpp"
 #include "runner/cli/terminal.hpp"
+#include "runner/record/json_answer.hpp"
 #include "runner/report/text_style.hpp"
 #include "runner/world/clock.hpp"
 #include "runner/world/files.hpp"
@@ -18,22 +21,28 @@ struct Desk {
     Terminal& terminal;
     Files& files;
     const Clock& clock;
+    JsonAnswer* answer = nullptr;  ///< of --json: then no text for people is written
 };
 
 int check_command(const Options& options, const Desk& desk);
+int list_command(const Options& options, const Desk& desk);  ///< check --list
+int judge_command(const Options& options, const Desk& desk);
+int accept_command(const Options& options, const Desk& desk);
 int predict_command(const Options& options, const Desk& desk);
-int ports_command(const Desk& desk);
+int ports_command(const Options& options, const Desk& desk);
 
-/// Refuses a --log that would replace the plan, the rig or the image.
+/// Refuses a --log that would replace a plan, a rig, the image or a file of a run's folder.
 Outcome<void> check_log_path(const Options& options, const Files& files);
 
 /// The style of a stream: colour, width and signs that it takes.
 TextStyle style_of(const Terminal& terminal, Stream stream, ColourWish wish);
-/// An error to standard error; its exit status.
+/// Text of a result, for people.
+Outcome<void> say(const Desk& desk, std::string_view text);
+/// An error, to standard error or into the answer; its exit status.
 int tell(const Error& error, const Options& options, const Desk& desk);
-/// All that is wrong with the files, to standard error; the exit status of wrong files.
+/// All that is wrong with the files, likewise; the exit status of wrong files.
 int tell_problems(const std::vector<std::string>& problems, const Desk& desk);
-/// Which cases of the plan --case selects; all without it.
+/// Which cases of the plan --case and --label select; all without them.
 Outcome<std::vector<std::size_t>> selected_cases(const Plan& plan, const Options& options);
 
 extern const char* const tool_version;

@@ -7,6 +7,7 @@
 #include "runner/record_case.hpp"
 #include "runner/report/junit_report.hpp"
 #include "runner/run_case.hpp"
+#include "runner/shell_words.hpp"
 #include "runner/wire/wire_cost.hpp"
 #include "runner/world/interrupt.hpp"
 #include "runner/world/sha256.hpp"
@@ -14,25 +15,11 @@
 namespace halflsb {
 namespace {
 
-std::string shell_quoted(const std::string& word) {
-    const auto plain = [](char c) {
-        return std::isalnum(static_cast<unsigned char>(c)) != 0 ||
-               std::string_view("_-./:=@+,").find(c) != std::string_view::npos;
-    };
-    if (!word.empty() && std::all_of(word.begin(), word.end(), plain)) return word;
-    std::string quoted = "'";
-    for (const char c : word) quoted += c == '\'' ? std::string("'\\''") : std::string(1, c);
-    return quoted + "'";
-}
-
-/// A name that looks like an option must not be taken for one.
-std::string case_option(const std::string& name) {
-    return name.starts_with('-') ? shell_quoted("--case=" + name) : "--case " + shell_quoted(name);
-}
-
 std::string rerun_command(const RunRequest& request, const std::string& case_name) {
-    std::string command = "halflsb check " + shell_quoted(request.plan.file) + " --rig " +
-                          shell_quoted(request.rig.file) + " " + case_option(case_name);
+    // A path that begins with "-" would be taken for an option.
+    const std::string plan = (request.plan.file.starts_with('-') ? "./" : "") + request.plan.file;
+    std::string command = "halflsb check " + shell_quoted(plan) + " --rig " + shell_quoted(request.rig.file) + " " +
+                          case_option(case_name);
     if (request.seed) command += " --seed " + std::to_string(*request.seed);
     if (request.root) command += " --root " + shell_quoted(*request.root);
     if (request.image) command += " --image " + shell_quoted(request.image->file);
@@ -154,7 +141,7 @@ Outcome<void> run_cases(const RunRequest& request, Board& board, RunResult& run,
 RunResult run_plan(const RunRequest& request, Files& files, const Clock& clock, RunObserver& observer) {
     const Instant started = clock.now();
     RunResult run = facts_of(request, clock);
-    auto folder = open_run_folder(files, {run.started_utc, run.plan_file, request.out});
+    auto folder = open_run_folder(files, {run.started_utc, run.plan_file, request.out, request.folder_note});
     if (!folder) {
         run.ended_by = folder.error();
         return run;
@@ -162,7 +149,7 @@ RunResult run_plan(const RunRequest& request, Files& files, const Clock& clock, 
     run.folder = folder->path();
     observer.starting(run);
     for (const std::string& warning : run.warnings) observer.warning(warning);
-    if (auto saved = folder->save_inputs(run.plan_text, run.rig_text); !saved) run.ended_by = saved.error();
+    if (auto saved = folder->save_inputs(run); !saved) run.ended_by = saved.error();
     // From now on a program that dies leaves a record that says so.
     if (auto saved = folder->save(run, false, junit_report(run)); !saved && !run.ended_by) run.ended_by = saved.error();
     if (!run.ended_by) {

@@ -28,6 +28,7 @@ struct RunRequest {
     std::optional<std::uint64_t> seed;  ///< as given on the command line
     std::optional<std::string> root;    ///< likewise
     std::vector<std::string> warnings;
+    std::string folder_note = {};  ///< part of the default folder's name, where one call makes several runs
 };
 
 /// Never throws away a finished case: each is on the disk before the next begins. What ended the run

@@ -1,6 +1,7 @@
 #include "runner/cli/case_selection.hpp"
 
 #include <algorithm>
+#include <set>
 
 #include "runner/world/nearest.hpp"
 #include "runner/world/printable.hpp"
@@ -72,6 +73,35 @@ Outcome<std::vector<std::size_t>> select_cases(const std::vector<std::string>& n
         if (selected[i]) indices.push_back(i);
     }
     return indices;
+}
+
+Outcome<std::vector<std::size_t>> select_labelled(const std::vector<std::size_t>& selected,
+                                                  const std::vector<std::vector<std::string>>& labels_of,
+                                                  const std::vector<std::string>& asked) {
+    if (asked.empty()) return selected;
+    std::set<std::string> known;
+    for (const auto& labels : labels_of) known.insert(labels.begin(), labels.end());
+    std::string list;
+    for (const std::string& label : known) list += (list.empty() ? "" : ", ") + printable(label);
+    const std::string remedy = known.empty() ? "the plan's cases have no labels" : "the plan's labels are: " + list;
+    for (const std::string& label : asked) {
+        if (known.count(label) > 0) continue;
+        const std::vector<std::string_view> words(known.begin(), known.end());
+        const auto near = nearest_word(label, words);
+        return Error{ErrorKind::usage, "--label", "no case has the label '" + printable(label) + "'",
+                     (near.empty() ? "" : "did you mean '" + printable(near) + "'? ") + remedy};
+    }
+    std::vector<std::size_t> kept;
+    for (const std::size_t index : selected) {
+        const auto& labels = labels_of[index];
+        if (std::any_of(asked.begin(), asked.end(), [&](const std::string& label) {
+                return std::find(labels.begin(), labels.end(), label) != labels.end();
+            }))
+            kept.push_back(index);
+    }
+    if (kept.empty())
+        return Error{ErrorKind::usage, "--label", "none of the cases that --case selects has such a label", remedy};
+    return kept;
 }
 
 }  // namespace halflsb

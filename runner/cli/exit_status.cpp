@@ -1,5 +1,7 @@
 #include "runner/cli/exit_status.hpp"
 
+#include <algorithm>
+
 namespace halflsb {
 
 namespace {
@@ -22,26 +24,31 @@ const std::vector<ExitStatus>& exit_statuses() {
         {rule_failed,
          "a rule failed on a valid capture",
          {"the response differs from the reference by more than a limit", "the latency is not the expected one",
-          "the gain leaves its band"},
+          "the gain leaves its band", "a response is not the accepted one"},
          "the report shows the figure, the first bad sample and the command that repeats the case"},
         {undecided,
          "a rule could not be decided, none failed",
-         {"the response fits the reference at no lag", "the stimulus has no power where a rule asks"},
+         {"the response fits the reference at no lag", "the stimulus has no power where a rule asks",
+          "there is no baseline yet that unchanged could compare with"},
          "the report says what was missing; choose a stimulus that tells"},
         {bench,
          "the bench: something could not be captured, no rule failed",
          {"no such port, no permission, or the port is busy",
           "the board is silent or its greeting disagrees with the plan", "the board's build-id is not that of --image",
-          "a command of the rig failed", "samples were lost or the board was unplugged"},
+          "a command of the rig failed", "samples were lost or the board was unplugged",
+          "judge: a selected case has no capture"},
          "the message says what was awaited, for how long, and what came instead; nothing is said about the filter"},
         {usage,
          "the command line is wrong",
-         {"an unknown command or option", "a value that is missing or out of range", "--case selects no case"},
+         {"an unknown command or option", "a value that is missing or out of range",
+          "--case or --label selects no case"},
          "halflsb --help"},
         {input,
          "a file is wrong, the board untouched",
          {"a plan or rig that is missing, too large or no TOML", "an unknown key, a wrong type, a value out of range",
-          "isolated is not true in the rig", "a file outside the root", "an --image without a build-id"},
+          "isolated is not true in the rig", "a file outside the root", "an --image without a build-id",
+          "a run folder that is incomplete, edited, of another version or not one of ours",
+          "accept: a run that is no baseline"},
          "the message names file, line and column and what to write instead"},
         {defect,
          "a defect of halflsb itself",
@@ -87,6 +94,25 @@ int exit_status_of(const RunResult& run) {
     if (counts.not_run > 0) return defect;
     if (counts.undecided > 0) return undecided;
     return counts.pass > 0 ? passed : usage;  // no case was selected
+}
+
+int exit_status_of_judgement(const RunResult& run) {
+    const Counts counts = run.counts();
+    if (counts.fail > 0) return rule_failed;
+    if (run.ended_by || counts.invalid > 0 || counts.not_run > 0) return bench;
+    if (counts.undecided > 0) return undecided;
+    return counts.pass > 0 ? passed : usage;  // no case was selected
+}
+
+int exit_status_of_all(const std::vector<int>& statuses) {
+    for (const int status : {interrupted, output, defect, input, usage, rule_failed, bench, undecided}) {
+        if (std::find(statuses.begin(), statuses.end(), status) != statuses.end()) return status;
+    }
+    return statuses.empty() ? defect : passed;
+}
+
+bool stops_everything(int exit_status) {
+    return exit_status == interrupted || exit_status == output || exit_status == defect;
 }
 
 std::string exit_status_reference() {

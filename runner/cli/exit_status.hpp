@@ -25,6 +25,15 @@ const std::vector<ExitStatus>& exit_statuses();
 /// nothing ended the run are our own defect: never a pass.
 int exit_status_of(const RunResult& run);
 
+/// Of captures that were judged again: 1 outranks 3 outranks 2 outranks 0 as above. What had ended the run while it was
+/// captured is no interruption of the judging: cases that were never captured are the bench's.
+int exit_status_of_judgement(const RunResult& run);
+
+/// Of several runs in one call, from that of each: 130, 73, 70, 65 and 64 before 1, then 3, 2, 0.
+int exit_status_of_all(const std::vector<int>& statuses);
+/// A run that ended so ends the whole call: nothing after it could be kept, or the person wants to stop.
+bool stops_everything(int exit_status);
+
 /// Of an error that came before or instead of a run.
 int exit_status_of(const Error& error);
 

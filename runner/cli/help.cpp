@@ -53,6 +53,7 @@ std::string typed(const OptionSpec& option) {
 std::string form_of(const CommandSpec& command) {
     std::string form = "halflsb " + std::string(command.name);
     if (!command.operand.empty()) form += " " + std::string(command.operand);
+    if (!command.optional.empty()) form += " [" + std::string(command.optional) + "]";
     for (const OptionSpec& option : option_table()) {
         if (holds(option.needed_by, command.command)) form += " " + typed(option);
     }
@@ -119,11 +120,12 @@ std::string command_reference() {
         out += "| option | what it does | without it |\n|---|---|---|\n";
         for (const OptionSpec& option : option_table()) {
             if (!holds(option.commands, command.command)) continue;
-            const std::string_view without = holds(option.needed_by, command.command) ? "refused" : option.default_text;
+            const std::string without = !holds(option.needed_by, command.command) ? std::string(option.default_text)
+                                        : option.unless.empty()                   ? "refused"
+                                                                : "refused, except with " + std::string(option.unless);
             out += "| `" + typed(option) + "` | " + std::string(option.help) + ". | " +
-                   (without == option.default_text && without.find('/') != std::string_view::npos
-                        ? "`" + std::string(without) + "`"
-                        : std::string(without)) +
+                   (without == option.default_text && without.find('/') != std::string::npos ? "`" + without + "`"
+                                                                                             : without) +
                    " |\n";
         }
         out += "\nExample: `" + std::string(command.example) + "`\n\n";

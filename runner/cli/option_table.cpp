@@ -9,6 +9,9 @@ namespace halflsb {
 
 namespace {
 
+constexpr std::int64_t fewest_kept_samples = 1;
+constexpr std::int64_t most_kept_samples = std::int64_t{1} << 30;
+
 std::string quoted(const std::string& argument) { return "'" + printable(argument) + "'"; }
 
 std::string take_path(std::optional<std::string>& path, const std::string& argument) {
@@ -19,7 +22,35 @@ std::string take_path(std::optional<std::string>& path, const std::string& argum
 
 std::string take_rig(Options& options, const std::string& argument) {
     if (argument.empty()) return "the path is empty";
-    options.rig = argument;
+    options.rigs.push_back(argument);
+    return "";
+}
+
+std::string take_label(Options& options, const std::string& argument) {
+    if (argument.empty()) return "the label is empty";
+    options.labels.push_back(argument);
+    return "";
+}
+
+std::string take_samples(Options& options, const std::string& argument) {
+    std::int64_t samples = 0;
+    const char* const end = argument.data() + argument.size();
+    const auto [stop, error] = std::from_chars(argument.data(), end, samples);
+    if (error != std::errc() || stop != end || samples < fewest_kept_samples || samples > most_kept_samples) {
+        return quoted(argument) + " is not a whole number from " + std::to_string(fewest_kept_samples) + " to " +
+               std::to_string(most_kept_samples);
+    }
+    options.kept_samples = samples;
+    return "";
+}
+
+std::string take_list(Options& options, const std::string&) {
+    options.list = true;
+    return "";
+}
+
+std::string take_json(Options& options, const std::string&) {
+    options.json = true;
     return "";
 }
 
@@ -68,29 +99,38 @@ std::string take_verbose(Options& options, const std::string&) {
 
 const std::vector<CommandSpec>& command_table() {
     static const std::vector<CommandSpec> table = {
-        {Command::check, "check", "PLAN",
+        {Command::check, "check", "PLAN", "",
          "Streams the plan's stimuli to the board, captures what its filter returns and judges it; the main job",
          "halflsb check cw7.toml --rig bench.toml"},
-        {Command::predict, "predict", "PLAN",
+        {Command::judge, "judge", "RUN", "PLAN",
+         "Judges the captures of a run again, by the plan it was made with or by another; needs no board and writes "
+         "nothing",
+         "halflsb judge .halflsb/20261201T093000Z-cw7"},
+        {Command::accept, "accept", "RUN", "",
+         "Keeps the responses of a good run as the baseline that its plan's unchanged rules compare with",
+         "halflsb accept .halflsb/20261201T093000Z-cw7"},
+        {Command::predict, "predict", "PLAN", "",
          "Reads the files and tells on paper what to expect: the filter's response, the time on the wire; needs no "
          "board",
          "halflsb predict cw7.toml --rig bench.toml"},
-        {Command::ports, "ports", "", "Lists the serial ports with their stable names", "halflsb ports"},
+        {Command::ports, "ports", "", "", "Lists the serial ports with their stable names", "halflsb ports"},
     };
     return table;
 }
 
 const std::vector<OptionSpec>& option_table() {
-    constexpr Command check = Command::check, predict = Command::predict, ports = Command::ports;
+    constexpr Command check = Command::check, judge = Command::judge, accept = Command::accept,
+                      predict = Command::predict, ports = Command::ports;
     static const std::vector<OptionSpec> table = {
         {"--rig",
          "",
          "RIG",
          "",
-         "How to reach the board: the lab's rig file",
+         "How to reach the board: the lab's rig file; check takes several, one run after the other",
          {check, predict},
          {check},
-         false,
+         "--list",
+         {check},
          take_rig},
         {"--case",
          "",
@@ -98,10 +138,31 @@ const std::vector<OptionSpec>& option_table() {
          "every case",
          "Only this case; the exact name, or a pattern in which * stands for any characters and ? for one; may be "
          "repeated",
-         {check, predict},
+         {check, judge, predict},
          {},
-         true,
+         "",
+         {check, judge, predict},
          take_case},
+        {"--label",
+         "",
+         "NAME",
+         "whatever their labels",
+         "Only cases with this label; repeated: with any of them; beside --case a case must match both",
+         {check, judge, predict},
+         {},
+         "",
+         {check, judge, predict},
+         take_label},
+        {"--list",
+         "",
+         "",
+         "",
+         "Shows the cases that would run, with the time on the wire where a rig is given; no board is touched",
+         {check},
+         {},
+         "",
+         {},
+         take_list},
         {"--seed",
          "",
          "N",
@@ -109,7 +170,8 @@ const std::vector<OptionSpec>& option_table() {
          "The seed of every random stimulus in place of the plan's",
          {check},
          {},
-         false,
+         "",
+         {},
          take_seed},
         {"--image",
          "",
@@ -118,52 +180,79 @@ const std::vector<OptionSpec>& option_table() {
          "The firmware's ELF file; its build-id must be the board's, and before_run is skipped when it already is",
          {check},
          {},
-         false,
+         "",
+         {},
          take_image},
         {"--out",
          "",
          "DIR",
          ".halflsb/<UTC time>-<plan>/",
-         "Where the run is recorded; a new or an empty folder",
+         "Where the run is recorded, a new or an empty folder; with several rigs it gets a folder for each",
          {check},
          {},
-         false,
+         "",
+         {},
          take_out},
         {"--root",
          "",
          "DIR",
          "the plan's folder",
-         "A plan may name files below this folder and no others",
-         {check, predict},
+         "A plan may name files below this folder and no others; accept writes the baseline below it",
+         {check, judge, accept, predict},
          {},
-         false,
+         "",
+         {},
          take_root},
+        {"--samples",
+         "",
+         "N",
+         "65536",
+         "How many samples of each case the baseline keeps, from the first on; of the rest hashes of at most 256 "
+         "stretches",
+         {accept},
+         {},
+         "",
+         {},
+         take_samples},
+        {"--json",
+         "",
+         "",
+         "",
+         "Makes standard output one JSON document and nothing else, also when the command fails",
+         {check, judge, accept, predict, ports},
+         {},
+         "",
+         {},
+         take_json},
         {"--verbose",
          "-v",
          "",
          "",
          "Says on standard error what is being done",
-         {check, predict, ports},
+         {check, judge, accept, predict, ports},
          {},
-         false,
+         "",
+         {},
          take_verbose},
         {"--log",
          "",
          "FILE",
          "none",
          "Keeps all diagnostics in this file, replacing it",
-         {check, predict, ports},
+         {check, judge, accept, predict, ports},
          {},
-         false,
+         "",
+         {},
          take_log},
         {"--color",
          "",
          "WHEN",
          "auto",
          "auto, always or never; auto is colour on a terminal unless NO_COLOR is set or TERM is dumb",
-         {check, predict, ports},
+         {check, judge, accept, predict, ports},
          {},
-         false,
+         "",
+         {},
          take_colour},
     };
     return table;

@@ -4,6 +4,7 @@
 
 #include <CLI/CLI.hpp>
 #include <algorithm>
+#include <iterator>
 #include <map>
 
 #include "runner/cli/exit_status.hpp"
@@ -73,10 +74,13 @@ Error unknown_option(const std::string& argument, const CommandSpec* command) {
 /// What neither a command nor an option took.
 Error unexpected(const std::string& argument, const CommandSpec* command) {
     if (argument.size() > 1 && argument.front() == '-') return unknown_option(argument, command);
-    if (command == nullptr) return unknown_command(argument);
-    return usage_error("'" + printable(argument) + "' is one operand too many",
-                       std::string(command->name) +
-                           (command->operand.empty() ? " takes none" : " takes one " + std::string(command->operand)));
+    return unknown_command(argument);
+}
+
+Error one_too_many(const std::string& argument, const CommandSpec* command) {
+    std::string takes = command->operand.empty() ? " takes none" : " takes one " + std::string(command->operand);
+    if (!command->optional.empty()) takes += " and at most one " + std::string(command->optional);
+    return usage_error("'" + printable(argument) + "' is one operand too many", std::string(command->name) + takes);
 }
 
 Error value_missing(const OptionSpec& option) {
@@ -85,9 +89,11 @@ Error value_missing(const OptionSpec& option) {
 }
 
 /// What CLI11 would say in words of its own or not at all: an option without its value, at the end or
-/// before another option, one with an empty value behind "=", a flag with any.
-Outcome<void> check_values(const std::vector<std::string>& arguments) {
-    for (std::size_t i = 0; i < arguments.size() && arguments[i] != "--"; ++i) {
+/// before another option, one with an empty value behind "=", a flag with any. Gives the place of the "--" that ends
+/// the options, or the number of arguments.
+Outcome<std::size_t> check_values(const std::vector<std::string>& arguments) {
+    std::size_t i = 0;
+    for (; i < arguments.size() && arguments[i] != "--"; ++i) {
         const std::string& argument = arguments[i];
         const OptionSpec* option = find_option(word_of(argument));
         if (option == nullptr) continue;
@@ -97,13 +103,13 @@ Outcome<void> check_values(const std::vector<std::string>& arguments) {
                 return usage_error(std::string(option->name) + " takes no value", "leave away what follows it");
         } else if (equals != std::string::npos) {
             if (equals + 1 == argument.size()) return value_missing(*option);
-        } else if (i + 1 == arguments.size() || find_option(arguments[i + 1]) != nullptr) {
+        } else if (i + 1 == arguments.size() || arguments[i + 1] == "--" || find_option(arguments[i + 1]) != nullptr) {
             return value_missing(*option);
         } else {
             ++i;  // its value, whatever that looks like
         }
     }
-    return {};
+    return i;
 }
 
 /// One command of the tables inside CLI11, with what it found.
@@ -112,7 +118,6 @@ struct CommandParser {
         parser = app.add_subcommand(std::string(spec->name));
         parser->set_help_flag();
         parser->allow_extras();
-        if (!spec->operand.empty()) parser->add_option(std::string(spec->operand), operand)->expected(1);
         for (const OptionSpec& option : option_table()) {
             if (!knows(option, spec->command)) continue;
             const std::string names =
@@ -125,25 +130,24 @@ struct CommandParser {
         }
     }
 
-    Outcome<std::variant<Options, Answer>> options() const {
+    /// `behind`: what stands behind "--", operands whatever they look like.
+    Outcome<std::variant<Options, Answer>> options(const std::vector<std::string>& behind) const {
         Options options;
         options.command = spec->command;
-        if (!spec->operand.empty() && operand.empty()) {
-            return usage_error(std::string(spec->name) + " needs a " + std::string(spec->operand),
-                               "for example: " + std::string(spec->example));
-        }
-        options.plan = operand;
+        if (auto taken = take_operands(options, behind); !taken) return taken.error();
         for (const OptionSpec& option : option_table()) {
             if (!knows(option, spec->command)) continue;
             const bool needed =
                 std::find(option.needed_by.begin(), option.needed_by.end(), spec->command) != option.needed_by.end();
             const std::vector<std::string> given = given_for(option);
-            if (given.empty() && needed) {
+            if (given.empty() && needed && (option.unless.empty() || flags.at(option.unless) == 0)) {
                 return usage_error(
                     std::string(spec->name) + " needs " + std::string(option.name) + " " + std::string(option.argument),
                     "for example: " + std::string(spec->example));
             }
-            if (given.size() > 1 && !option.repeats && !option.argument.empty()) {
+            const bool repeats =
+                std::find(option.repeats.begin(), option.repeats.end(), spec->command) != option.repeats.end();
+            if (given.size() > 1 && !repeats && !option.argument.empty()) {
                 return usage_error(std::string(option.name) + " is given " + std::to_string(given.size()) + " times",
                                    "give it once");
             }
@@ -155,6 +159,27 @@ struct CommandParser {
         return std::variant<Options, Answer>(std::move(options));
     }
 
+    Outcome<void> take_operands(Options& options, const std::vector<std::string>& behind) const {
+        std::vector<std::string> operands = parser->remaining();
+        const auto option = std::find_if(operands.begin(), operands.end(), [](const std::string& word) {
+            return word.size() > 1 && word.front() == '-';
+        });
+        if (option != operands.end()) return unexpected(*option, spec);
+        operands.insert(operands.end(), behind.begin(), behind.end());
+        const std::size_t most = (spec->operand.empty() ? 0u : 1u) + (spec->optional.empty() ? 0u : 1u);
+        if (operands.size() > most) return one_too_many(operands[most], spec);
+        if (!spec->operand.empty() && (operands.empty() || operands.front().empty())) {
+            return usage_error(std::string(spec->name) + " needs a " + std::string(spec->operand),
+                               "for example: " + std::string(spec->example));
+        }
+        for (std::size_t i = 0; i < operands.size(); ++i) {
+            const std::string_view name = i == 0 ? spec->operand : spec->optional;
+            if (operands[i].empty()) return usage_error("the " + std::string(name) + " is an empty path");
+            (name == "RUN" ? options.run : options.plan) = operands[i];
+        }
+        return {};
+    }
+
     std::vector<std::string> given_for(const OptionSpec& option) const {
         if (option.argument.empty()) {
             return std::vector<std::string>(flags.at(option.name) > 0 ? 1 : 0);
@@ -164,7 +189,6 @@ struct CommandParser {
 
     const CommandSpec* spec;
     CLI::App* parser = nullptr;
-    std::string operand;
     std::map<std::string_view, std::vector<std::string>> values;  // nodes stay where CLI11 points to
     std::map<std::string_view, int> flags;
 };
@@ -182,7 +206,10 @@ Outcome<std::variant<Options, Answer>> parse_command_line(const std::vector<std:
         if (argument == "--version")
             return Parsed(Answer{Stream::out, "halflsb " + std::string(tool_version) + "\n", 0});
     }
-    if (auto sound = check_values(arguments); !sound) return sound.error();
+    const auto options_end = check_values(arguments);
+    if (!options_end) return options_end.error();
+    const auto end = arguments.begin() + static_cast<std::ptrdiff_t>(*options_end);
+    const std::vector<std::string> behind(end == arguments.end() ? end : end + 1, arguments.end());
 
     CLI::App app;
     app.set_help_flag();
@@ -191,7 +218,7 @@ Outcome<std::variant<Options, Answer>> parse_command_line(const std::vector<std:
     std::vector<std::unique_ptr<CommandParser>> parsers;
     for (const CommandSpec& spec : command_table()) parsers.push_back(std::make_unique<CommandParser>(app, spec));
     try {
-        std::vector<std::string> reversed(arguments.rbegin(), arguments.rend());
+        std::vector<std::string> reversed(std::make_reverse_iterator(end), arguments.rend());
         app.parse(std::move(reversed));
     } catch (const CLI::ParseError& error) {
         return usage_error(printable(error.what()));
@@ -202,12 +229,7 @@ Outcome<std::variant<Options, Answer>> parse_command_line(const std::vector<std:
         return unexpected(stray.front(), nullptr);
     if (used == parsers.end()) return unknown_command(arguments.front());
     const CommandParser& command = **used;
-    if (const std::vector<std::string> stray = command.parser->remaining(); !stray.empty()) {
-        const auto option =
-            std::find_if(stray.begin(), stray.end(), [](const std::string& word) { return word.front() == '-'; });
-        return unexpected(option == stray.end() ? stray.front() : *option, command.spec);
-    }
-    return command.options();
+    return command.options(behind);
 }
 
 }  // namespace halflsb

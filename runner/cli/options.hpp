@@ -14,12 +14,13 @@
 
 namespace halflsb {
 
-enum class Command { check, predict, ports };
+enum class Command { check, judge, accept, predict, ports };
 
 struct CommandSpec {
     Command command;
     std::string_view name;
-    std::string_view operand;  ///< "PLAN", or "" for none
+    std::string_view operand;   ///< "PLAN", or "" for none
+    std::string_view optional;  ///< a second one that may be left out, or ""
     std::string_view help;
     std::string_view example;
 };
@@ -27,9 +28,14 @@ struct CommandSpec {
 /// The command line as it was typed, each value checked by itself.
 struct Options {
     Command command = Command::check;
-    std::string plan;
-    std::string rig;  ///< "" when none was given
+    std::string plan;               ///< "" when none was given
+    std::string run;                ///< folder of a run, of judge and accept
+    std::vector<std::string> rigs;  ///< several only for check
     std::vector<std::string> case_patterns;
+    std::vector<std::string> labels;
+    bool list = false;
+    bool json = false;
+    std::optional<std::int64_t> kept_samples;  ///< of --samples
     std::optional<std::uint64_t> seed;
     std::optional<std::string> image;
     std::optional<std::string> out;
@@ -46,8 +52,9 @@ struct OptionSpec {
     std::string_view default_text;   ///< what holds without it; "" where that goes without saying
     std::string_view help;           ///< a sentence without its full stop
     std::vector<Command> commands;   ///< those that know it
-    std::vector<Command> needed_by;  ///< those that cannot do without
-    bool repeats = false;
+    std::vector<Command> needed_by;  ///< those that cannot do without, ...
+    std::string_view unless;         ///< ... except with this option
+    std::vector<Command> repeats;    ///< those to which it may be given more than once
     /// Puts an argument ("" of a flag) into the options; what is wrong with it, or "".
     std::string (*take)(Options& options, const std::string& argument) = nullptr;
 };

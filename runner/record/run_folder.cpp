@@ -35,7 +35,8 @@ Outcome<std::string> claim_default(Files& files, const RunFolderWish& wish) {
     const std::string base = ".halflsb";
     if (auto made = files.make_directories(base); !made) return made.error();
     const std::string stem = file_name_part(fs::path(wish.plan_file).stem().string());
-    const std::string wanted = base + "/" + compact(wish.started_utc) + "-" + stem;
+    const std::string wanted = base + "/" + compact(wish.started_utc) + "-" + stem +
+                               (wish.note.empty() ? "" : "-" + file_name_part(wish.note));
     for (int i = 1; i <= most_namesakes; ++i) {
         const std::string path = i == 1 ? wanted : wanted + "-" + std::to_string(i);
         // One call makes it and tells whether it was there: two runs never share a folder.
@@ -81,9 +82,19 @@ Outcome<void> prove_writable(Files& files, const std::string& folder) {
 
 std::string RunFolder::path_of(std::string_view file) const { return path_ + "/" + std::string(file); }
 
-Outcome<void> RunFolder::save_inputs(const std::string& plan_text, const std::string& rig_text) {
-    if (auto written = files_->write(path_of("plan.toml"), plan_text); !written) return written;
-    return files_->write(path_of("rig.toml"), rig_text);
+Outcome<void> RunFolder::save_inputs(const RunResult& run) {
+    if (auto written = files_->write(path_of("plan.toml"), run.plan_text); !written) return written;
+    if (auto written = files_->write(path_of("rig.toml"), run.rig_text); !written) return written;
+    // Made in any case: it is the root under which the plan is read again.
+    const std::string root = path_of(plan_files_folder);
+    if (auto made = files_->make_directories(root); !made) return made;
+    for (const PlanPart& part : run.plan_parts) {
+        if (part.path.empty()) continue;  // the plan itself
+        const std::string path = root + "/" + part.path;
+        if (auto made = files_->make_directories(path.substr(0, path.rfind('/'))); !made) return made;
+        if (auto written = files_->write(path, part.bytes); !written) return written;
+    }
+    return {};
 }
 
 Outcome<void> RunFolder::save(const RunResult& run, bool finished, const std::string& junit_xml) {
@@ -97,6 +108,13 @@ Outcome<RunFolder> open_run_folder(Files& files, const RunFolderWish& wish) {
     if (auto made = files.make_directories(*path + "/captures"); !made) return made.error();
     if (auto proved = prove_writable(files, *path); !proved) return proved.error();
     return RunFolder(files, *path);
+}
+
+Outcome<std::string> open_folder_of_runs(Files& files, const std::string& out) {
+    auto path = claim_given(files, out);
+    if (!path) return path;
+    if (auto proved = prove_writable(files, *path); !proved) return proved.error();
+    return path;
 }
 
 std::string capture_file_name(std::size_t case_number, std::string_view case_name) {

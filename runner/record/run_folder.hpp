@@ -15,10 +15,14 @@
 
 namespace halflsb {
 
+/// Below the run's folder: the files that the plan was read from, under their paths below its root.
+inline constexpr const char* plan_files_folder = "plan-files";
+
 struct RunFolderWish {
     std::string started_utc;         ///< "2026-12-01T09:30:00Z"
     std::string plan_file;           ///< its name is part of the folder's
     std::optional<std::string> out;  ///< --out; none: .halflsb/<UTC time>-<plan>/ in the current folder
+    std::string note = {};           ///< at the end of the default's name, where one call makes several runs
 };
 
 class RunFolder {
@@ -27,8 +31,8 @@ public:
     /// Of a file of the folder: path() + "/" + file.
     std::string path_of(std::string_view file) const;
 
-    /// plan.toml and rig.toml, as they were.
-    Outcome<void> save_inputs(const std::string& plan_text, const std::string& rig_text);
+    /// plan.toml and rig.toml as they were, and below plan-files/ every other file that the plan was read from.
+    Outcome<void> save_inputs(const RunResult& run);
     /// run.json and junit.xml anew: after each case, and once more with `finished` at the end.
     Outcome<void> save(const RunResult& run, bool finished, const std::string& junit_xml);
 
@@ -46,6 +50,10 @@ private:
 /// and refuses any other, because a record must not mix two runs. `files` must outlive the RunFolder.
 /// Errors are of kind output, the place is the path.
 Outcome<RunFolder> open_run_folder(Files& files, const RunFolderWish& wish);
+
+/// --out DIR of a call that makes several runs: DIR must be new or empty, is made and proved writable, and each run
+/// gets a folder below it.
+Outcome<std::string> open_folder_of_runs(Files& files, const std::string& out);
 
 /// Below the run's folder: "captures/003-mains-hum-half-scale.npy". The number keeps two names apart
 /// that become the same.

@@ -1,68 +1,25 @@
 #include "runner/record/run_json.hpp"
 
-#include <cmath>
-#include <nlohmann/json.hpp>
 #include <variant>
 
+#include "runner/record/json_parts.hpp"
 #include "runner/record/json_text.hpp"
+#include "runner/record/run_document.hpp"
 
 namespace halflsb {
 
 namespace {
 
-using Json = nlohmann::ordered_json;
-
-Json number(std::optional<double> value) { return value && std::isfinite(*value) ? Json(*value) : Json(nullptr); }
-
 Json count(std::optional<std::uint32_t> value) { return value ? Json(*value) : Json(nullptr); }
 
-/// What was not given is null, not "".
-Json text(std::string_view value) { return value.empty() ? Json(nullptr) : Json(value); }
-
-std::string_view name_of(ErrorKind kind) {
-    switch (kind) {
-        case ErrorKind::usage:
-            return "usage";
-        case ErrorKind::input:
-            return "input";
-        case ErrorKind::bench:
-            return "bench";
-        case ErrorKind::output:
-            return "output";
-        case ErrorKind::interrupted:
-            return "interrupted";
-        case ErrorKind::defect:
-            break;
-    }
-    return "defect";
-}
-
-Json error_json(const std::optional<Error>& error) {
-    if (!error) return nullptr;
-    return {{"kind", name_of(error->kind)},
-            {"place", text(error->place)},
-            {"problem", error->problem},
-            {"remedy", text(error->remedy)}};
-}
-
-Json signal_json(const Signal& signal) {
-    return {{"rate_hz", number(signal.rate_hz)},
-            {"input", signal.input.name},
-            {"output", signal.output.name},
-            {"output_per_input", number(signal.output_per_input)},
-            {"filter", text(signal.filter)},
-            {"unit", text(signal.unit)},
-            {"full_scale_unit", number(signal.full_scale_unit)},
-            {"quantise", name_of(signal.quantise)}};
-}
-
 Json board_json(const BoardFacts& board) {
-    return {{"rig_name", text(board.rig_name)},
-            {"link", text(board.link)},
-            {"serial", text(board.serial)},
-            {"build_id", text(board.build_id)},
-            {"filter", text(board.filter)},
-            {"injection", text(board.injection)},
+    return {{"rig_name", text_json(board.rig_name)},
+            {"link", text_json(board.link)},
+            {"serial", text_json(board.serial)},
+            {"build_id", text_json(board.build_id)},
+            {"filter", text_json(board.filter)},
+            {"injection", text_json(board.injection)},
+            {"channels", board.channels},
             {"block_samples", board.block_samples},
             {"credit_blocks", board.credit_blocks},
             {"tick_hz", board.tick_hz}};
@@ -70,16 +27,20 @@ Json board_json(const BoardFacts& board) {
 
 Json firmware_json(const FirmwareCheck& firmware) {
     return {{"verified", firmware.state == FirmwareCheck::State::agrees},
-            {"image_file", text(firmware.image_file)},
-            {"image_build_id", text(firmware.image_build_id)},
+            {"image_file", text_json(firmware.image_file)},
+            {"image_build_id", text_json(firmware.image_build_id)},
             {"before_run_skipped", firmware.before_run_skipped}};
 }
 
 Json figure_json(const JudgedFigure& figure) {
-    Json json = {{"name", figure.name},           {"value", number(figure.value)},
-                 {"limit", number(figure.limit)}, {"margin", number(figure.margin)},
-                 {"unit", text(figure.unit)},     {"at_least", figure.at_least},
-                 {"passed", figure.passed},       {"note", text(figure.note)}};
+    Json json = {{"name", figure.name},
+                 {"value", number_json(figure.value)},
+                 {"limit", number_json(figure.limit)},
+                 {"margin", number_json(figure.margin)},
+                 {"unit", text_json(figure.unit)},
+                 {"at_least", figure.at_least},
+                 {"passed", figure.passed},
+                 {"note", text_json(figure.note)}};
     // The judge's word for a response without any error: then no ratio to the error exists.
     if (!figure.value && figure.passed && figure.note == "identical") json["identical"] = true;
     return json;
@@ -88,7 +49,7 @@ Json figure_json(const JudgedFigure& figure) {
 Json neighbourhood_json(const std::optional<Neighbourhood>& around, const Signal& signal) {
     if (!around) return nullptr;
     Json reference = Json::array();
-    for (const double value : around->reference) reference.push_back(number(value));
+    for (const double value : around->reference) reference.push_back(number_json(value));
     Json json = {{"index_samples", around->index},
                  {"first_index_samples", around->first_index},
                  {"stimulus_codes", around->stimulus},
@@ -104,10 +65,11 @@ Json rule_json(const RuleVerdict& verdict, const Signal& signal) {
     const PlanPosition& at = verdict.rule.position;
     return {{"kind", kind_name(verdict.rule)},
             {"implicit", latency != nullptr && latency->implicit},
-            {"reference", text(verdict.reference)},
-            {"position", {{"file", text(at.file)}, {"line", at.line}, {"column", at.column}}},
+            {"reference", text_json(verdict.reference)},
+            {"position", {{"file", text_json(at.file)}, {"line", at.line}, {"column", at.column}}},
             {"verdict", name_of(verdict.verdict)},
-            {"reason", text(verdict.reason)},
+            {"reason", text_json(verdict.reason)},
+            {"channel", verdict.channel > 0 ? Json(verdict.channel) : Json(nullptr)},
             {"figures", std::move(figures)},
             {"first_bad", neighbourhood_json(verdict.first_bad, signal)}};
 }
@@ -122,76 +84,121 @@ Json stream_json(const StreamFacts& stream) {
             {"lost_at_board_bytes", count(stream.bytes_lost_at_board)},
             {"gaps_at_board", count(stream.gaps_at_board)},
             {"resends", stream.resends},
-            {"streaming_s", number(stream.streaming_s)},
-            {"line_use_ratio", number(stream.line_use_ratio)},
+            {"streaming_s", number_json(stream.streaming_s)},
+            {"line_use_ratio", number_json(stream.line_use_ratio)},
             {"total_ticks", stream.ticks_total},
             {"largest_ticks_per_sample", stream.ticks_largest}};
 }
 
-Json case_json(const CaseResult& result, const Signal& signal) {
+/// What a rule came to; everything here follows from plan and captures.
+Json case_verdict_json(const CaseResult& result, const Signal& signal) {
     Json rules = Json::array();
     for (const RuleVerdict& rule : result.rules) rules.push_back(rule_json(rule, signal));
-    Json capture = nullptr;
-    if (!result.capture_file.empty())
-        capture = {{"file", result.capture_file}, {"sha256", text(result.capture_sha256)}};
     return {{"number", result.number},
             {"name", result.name},
             {"verdict", name_of(result.verdict)},
             {"grade", name_of(result.grade)},
             {"invalid", error_json(result.invalid)},
-            {"rules", std::move(rules)},
             {"latency_told", result.latency_told},
+            {"rules", std::move(rules)}};
+}
+
+Json capture_json(const std::string& file, const std::string& sha256) {
+    if (file.empty()) return nullptr;
+    return {{"file", file}, {"sha256", text_json(sha256)}};
+}
+
+Json attempt_json(const AttemptResult& attempt) {
+    return {{"invalid", error_json(attempt.invalid)},
+            {"stream", stream_json(attempt.stream)},
+            {"started_utc", text_json(attempt.started_utc)},
+            {"elapsed_s", number_json(attempt.elapsed_s)},
+            {"capture", capture_json(attempt.capture_file, attempt.capture_sha256)}};
+}
+
+/// How a case was captured.
+Json case_json(const CaseResult& result) {
+    const StimulusFacts& stimulus = result.stimulus;
+    Json settings = Json::object(), attempts = Json::array();
+    for (const CaseSetting& setting : result.settings) settings[setting.name] = setting.value;
+    for (const AttemptResult& attempt : result.attempts) attempts.push_back(attempt_json(attempt));
+    return {{"number", result.number},
+            {"name", result.name},
+            {"stimulus",
+             {{"shape", text_json(stimulus.shape)},
+              {"recipe", recipe_json(stimulus.values)},
+              {"samples", stimulus.samples},
+              {"sha256", text_json(stimulus.sha256)},
+              {"file", text_json(stimulus.file)}}},
+            {"rate_hz", number_json(result.rate_hz)},
+            {"start", name_of(result.start)},
+            {"start_samples", result.start_samples},
+            {"settings", std::move(settings)},
             {"stream", stream_json(result.stream)},
-            {"started_utc", text(result.started_utc)},
-            {"elapsed_s", number(result.elapsed_s)},
-            {"capture", std::move(capture)},
-            {"rerun", text(result.rerun)}};
+            {"started_utc", text_json(result.started_utc)},
+            {"elapsed_s", number_json(result.elapsed_s)},
+            {"capture", capture_json(result.capture_file, result.capture_sha256)},
+            {"attempts", std::move(attempts)},
+            {"rerun", text_json(result.rerun)}};
+}
+
+constexpr std::size_t verdict_level = 1, verdict_case_level = 3;
+
+/// The verdict section around its cases, which were rendered before.
+std::string verdict_frame(const RunResult& run, const std::vector<std::string>& cases) {
+    const Counts counts = run.counts();
+    const Json frame = {{"title", text_json(run.title)},
+                        {"signal", signal_json(run.signal)},
+                        {"latency_verified", run.latency_verified()},
+                        {"counts",
+                         {{"pass", counts.pass},
+                          {"fail", counts.fail},
+                          {"invalid", counts.invalid},
+                          {"undecided", counts.undecided},
+                          {"not_run", counts.not_run}}},
+                        {"cases", Json::array()}};
+    std::string text = json_value_text(frame, verdict_level);
+    fill_last_array(text, "\n  }", cases, verdict_case_level);
+    return text;
+}
+
+std::string case_verdict_text(const RunResult& run, std::size_t index) {
+    return json_value_text(case_verdict_json(run.cases[index], run.signal), verdict_case_level);
 }
 
 }  // namespace
 
+std::string verdict_text(const RunResult& run) {
+    std::vector<std::string> cases;
+    for (std::size_t index = 0; index < run.cases.size(); ++index) cases.push_back(case_verdict_text(run, index));
+    return verdict_frame(run, cases);
+}
+
 std::string run_json(const RunResult& run, bool finished) { return GrowingRunJson().document(run, finished); }
 
 std::string GrowingRunJson::document(const RunResult& run, bool finished) {
-    const Counts counts = run.counts();
-    constexpr std::size_t case_level = 2;
     while (case_texts_.size() < run.cases.size()) {
-        case_texts_.push_back(json_value_text(case_json(run.cases[case_texts_.size()], run.signal), case_level));
+        const std::size_t index = case_texts_.size();
+        verdict_texts_.push_back(case_verdict_text(run, index));
+        case_texts_.push_back(json_value_text(case_json(run.cases[index]), run_case_level));
     }
-    // Everything but the cases, which stand last and are put in as text.
-    const Json frame = {
+    const Json head = {
         {"format", "halflsb run"},
         {"format_version", run_json_version},
         {"tool_version", run.tool_version},
         {"finished", finished},
-        {"started_utc", text(run.started_utc)},
-        {"elapsed_s", number(run.elapsed_s)},
-        {"title", text(run.title)},
-        {"plan", {{"file", run.plan_file}, {"sha256", text(run.plan_sha256)}}},
-        {"rig", {{"file", run.rig_file}, {"sha256", text(run.rig_sha256)}}},
+        {"started_utc", text_json(run.started_utc)},
+        {"elapsed_s", number_json(run.elapsed_s)},
+        {"plan", plan_json(run)},
+        {"rig", {{"file", run.rig_file}, {"sha256", text_json(run.rig_sha256)}}},
         {"seed", run.seed ? Json(*run.seed) : Json(nullptr)},
-        {"signal", signal_json(run.signal)},
         {"board", board_json(run.board)},
         {"firmware", firmware_json(run.firmware)},
-        {"latency_verified", run.latency_verified()},
-        {"counts",
-         {{"pass", counts.pass},
-          {"fail", counts.fail},
-          {"invalid", counts.invalid},
-          {"undecided", counts.undecided},
-          {"not_run", counts.not_run}}},
         {"ended_by", error_json(run.ended_by)},
         {"warnings", run.warnings},
         {"cases_planned", run.cases_planned},
-        {"cases", Json::array()},
     };
-    std::string whole = json_text(frame);
-    if (case_texts_.empty()) return whole;
-    const std::string_view empty_end = "[]\n}\n";
-    whole.resize(whole.size() - empty_end.size());
-    const std::string indent(2 * case_level, ' ');
-    for (std::size_t i = 0; i < case_texts_.size(); ++i) whole += (i == 0 ? "[\n" : ",\n") + indent + case_texts_[i];
-    return whole + "\n  ]\n}\n";
+    return joined_document(head, verdict_frame(run, verdict_texts_), case_texts_);
 }
 
 }  // namespace halflsb

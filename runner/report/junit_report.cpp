@@ -6,6 +6,7 @@
 #include <sstream>
 
 #include "runner/report/people.hpp"
+#include "runner/report/rule_report.hpp"
 #include "runner/report/terminal_report.hpp"
 #include "runner/world/printable.hpp"
 
@@ -52,7 +53,7 @@ std::string message_of(const CaseResult& result, Verdict blamed) {
     std::string message;
     for (const RuleVerdict& rule : result.rules) {
         if (rule.verdict != blamed) continue;
-        std::string part(kind_name(rule.rule));
+        std::string part = rule_title(rule);
         // "max 1.5 LSB of 0.5" where there is a number, else why there is none.
         for (const JudgedFigure& figure : rule.figures) {
             if (blamed == Verdict::fail && !figure.passed && figure.value && figure.limit) {

@@ -127,6 +127,11 @@ Ink ink_of(Verdict verdict) {
 
 }  // namespace
 
+std::string rule_title(const RuleVerdict& verdict) {
+    const std::string kind(kind_name(verdict.rule));
+    return verdict.channel > 0 ? kind + ", channel " + std::to_string(verdict.channel) : kind;
+}
+
 std::string rule_brief(const RuleVerdict& verdict) {
     const JudgedFigure* tightest = nullptr;
     for (const JudgedFigure& figure : verdict.figures) {
@@ -146,9 +151,12 @@ std::string rule_block(const RuleVerdict& verdict, const Signal& signal, const T
     const auto* latency = std::get_if<LatencyRule>(&verdict.rule.kind);
     const bool implicit = latency != nullptr && latency->implicit;
 
-    std::string out = std::string(block_indent, ' ') + std::string(kind_name(verdict.rule)) + ": " +
+    std::string out = std::string(block_indent, ' ') + rule_title(verdict) + ": " +
                       painted(style, ink_of(verdict.verdict), name_of(verdict.verdict)) + "\n";
-    std::string asked = verdict.reference.empty() ? "" : "against the " + printable(verdict.reference) + " reference, ";
+    std::string asked = verdict.reference.empty() ? ""
+                        : verdict.reference == "accepted"
+                            ? "against the accepted run, "
+                            : "against the " + printable(verdict.reference) + " reference, ";
     asked += implicit ? "asked of every case" : "asked at " + printable(to_text(verdict.rule.position));
     out += wrapped(style, asked, inner_indent);
     if (!verdict.reason.empty()) out += wrapped(style, printable_lines(verdict.reason), inner_indent);

@@ -9,6 +9,9 @@
 
 namespace halflsb {
 
+/// "error", "error, channel 2".
+std::string rule_title(const RuleVerdict& verdict);
+
 /// The rule's tightest figure on part of a line: "max 0.499 LSB of 0.5", "latency 0 samples"; "" when
 /// it has no figure.
 std::string rule_brief(const RuleVerdict& verdict);

@@ -54,11 +54,14 @@ std::string case_brief(const CaseResult& result) {
     };
     if (result.verdict == CaseVerdict::invalid) return "nothing judged";
     if (result.verdict == CaseVerdict::pass) {
-        for (const RuleVerdict& rule : result.rules) add(rule_brief(rule));
+        for (const RuleVerdict& rule : result.rules) {
+            const std::string part = rule_brief(rule);
+            add(part.empty() || rule.channel == 0 ? part : part + " on channel " + std::to_string(rule.channel));
+        }
     } else {
         const Verdict blamed = result.verdict == CaseVerdict::fail ? Verdict::fail : Verdict::undecided;
         for (const RuleVerdict& rule : result.rules) {
-            if (rule.verdict == blamed) add(std::string(kind_name(rule.rule)));
+            if (rule.verdict == blamed) add(rule_title(rule));
         }
     }
     if (result.grade == Grade::plausible) add("capture plausible, not proven");
@@ -113,6 +116,56 @@ std::string invalid_block(const CaseResult& result, const TextStyle& style) {
     return out;
 }
 
+/// Board, firmware, filter and signal.
+std::string board_lines(const RunResult& run, const TextStyle& style) {
+    const std::string serial = run.board.serial.empty() ? "no serial number" : "serial " + printable(run.board.serial);
+    std::string out = field(style, "board", serial);
+    out += field(style, "firmware", firmware_text(run));
+    out += field(style, "filter",
+                 printable(run.board.filter) + ", samples enter at " + printable(run.board.injection) + "; " +
+                     not_seen_from(run.board.injection));
+    const Signal& signal = run.signal;
+    return out + field(style, "signal",
+                       text_of(signal.input) + " in, " + text_of(signal.output) + " out, " + rate_text(signal.rate_hz) +
+                           (signal.channels > 1 ? ", " + std::to_string(signal.channels) + " channels" : ""));
+}
+
+/// The signal as the case had it, for times.
+Signal signal_of(const RunResult& run, const CaseResult& result) {
+    Signal signal = run.signal;
+    if (result.rate_hz) signal.rate_hz = *result.rate_hz;
+    return signal;
+}
+
+/// How a case was captured, where that is not as usual: start state, settings, rate, attempts. Lines or "".
+std::string capture_lines(const RunResult& run, const CaseResult& result, const TextStyle& style) {
+    std::string out;
+    const auto add = [&](const char* key, const std::string& text) {
+        out += wrapped(style, padded(key, 10) + text, 2);
+    };
+    if (result.start == Start::flush)
+        add("start", "flush, " + counted(result.start_samples, "zero", "zeros") + " first");
+    if (result.start == Start::running) {
+        add("start",
+            "running, the first " + counted(result.start_samples, "sample is", "samples are") + " judged by no rule");
+    }
+    std::string settings;
+    for (const CaseSetting& setting : result.settings)
+        settings += (settings.empty() ? "" : ", ") + printable(setting.name) + " = " + std::to_string(setting.value);
+    if (!settings.empty()) add("settings", settings);
+    if (result.rate_hz) add("rate", rate_text(*result.rate_hz));
+    if (!result.attempts.empty()) {
+        std::string attempts = "attempt " + std::to_string(result.attempts.size() + 1);
+        if (run.attempts_allowed > 0) attempts += " of " + std::to_string(run.attempts_allowed);
+        for (std::size_t i = 0; i < result.attempts.size(); ++i) {
+            attempts +=
+                "; attempt " + std::to_string(i + 1) + " was invalid: " + printable(result.attempts[i].invalid.problem);
+        }
+        add("attempts", attempts);
+    }
+    return out;
+}
+
 }  // namespace
 
 std::string not_seen_from(std::string_view injection) {
@@ -131,15 +184,7 @@ std::string start_text(const RunResult& run, const TextStyle& style) {
 }
 
 std::string board_text(const RunResult& run, std::optional<double> wire_s, const TextStyle& style) {
-    const std::string serial = run.board.serial.empty() ? "no serial number" : "serial " + printable(run.board.serial);
-    std::string out = field(style, "board", serial);
-    out += field(style, "firmware", firmware_text(run));
-    out += field(style, "filter",
-                 printable(run.board.filter) + ", samples enter at " + printable(run.board.injection) + "; " +
-                     not_seen_from(run.board.injection));
-    out += field(style, "signal",
-                 std::string(run.signal.input.name) + " in, " + std::string(run.signal.output.name) + " out, " +
-                     rate_text(run.signal.rate_hz));
+    std::string out = board_lines(run, style);
     out += field(style, "cases",
                  counted(static_cast<std::int64_t>(run.cases_planned.size()), "case", "cases") +
                      (wire_s ? ", " + duration_text(*wire_s) + " on the wire" : ", time on the wire not known"));
@@ -148,7 +193,7 @@ std::string board_text(const RunResult& run, std::optional<double> wire_s, const
 
 std::string case_text(const RunResult& run, std::size_t index, const TextStyle& style) {
     const CaseResult& result = run.cases[index];
-    std::string out = case_line(run, index, style);
+    std::string out = case_line(run, index, style) + capture_lines(run, result, style);
     if (result.verdict == CaseVerdict::pass) return out;
     if (result.verdict == CaseVerdict::invalid) {
         out += invalid_block(result, style);
@@ -159,10 +204,12 @@ std::string case_text(const RunResult& run, std::size_t index, const TextStyle& 
                 const std::string kind(kind_name(rule.rule));
                 std::string brief = rule_brief(rule);
                 if (brief.rfind(kind + " ", 0) == 0) brief.erase(0, kind.size() + 1);
-                briefs += wrapped(style, kind + ": pass" + (brief.empty() ? "" : ", " + brief) +
-                                              (rule.reason.empty() ? "" : "; " + printable(rule.reason)), 2);
+                briefs += wrapped(style,
+                                  rule_title(rule) + ": pass" + (brief.empty() ? "" : ", " + brief) +
+                                      (rule.reason.empty() ? "" : "; " + printable(rule.reason)),
+                                  2);
             } else {
-                out += rule_block(rule, run.signal, style);
+                out += rule_block(rule, signal_of(run, result), style);
             }
         }
         out += briefs;
@@ -186,16 +233,49 @@ std::string summary_text(const RunResult& run, const TextStyle& style) {
     if (!run.latency_verified())
         out += wrapped(style, "latency not verified: no case that ran could tell its latency", 0);
     if (run.firmware.state != FirmwareCheck::State::agrees) {
-        out += wrapped(style,
-                       run.firmware.image_file.empty()
-                           ? "firmware not verified: --image FILE compares the board's build-id with a file's"
-                           : "firmware not verified: the board was not seen to run " +
-                                 printable(run.firmware.image_file),
-                       0);
+        out +=
+            wrapped(style,
+                    run.firmware.image_file.empty()
+                        ? "firmware not verified: --image FILE compares the board's build-id with a file's"
+                        : "firmware not verified: the board was not seen to run " + printable(run.firmware.image_file),
+                    0);
     }
     // Not wrapped: a path is copied as one line.
     if (!run.folder.empty()) out += "run folder: " + printable(run.folder) + "\n";
     return out + wrapped(style, evidence_caution(), 0);
+}
+
+std::string judged_text(const RunResult& run, const std::string& written_by, bool own_plan, const TextStyle& style) {
+    std::string out = field(
+        style, "run",
+        printable(run.folder) + ", captured " + printable(run.started_utc) + " by halflsb " + printable(written_by));
+    out += field(style, "plan", titled(run.plan_file, run.title) + (own_plan ? ", as recorded" : ""));
+    out += field(style, "rig", titled(run.rig_file, run.board.rig_name));
+    out += board_lines(run, style);
+    return out + field(style, "cases", counted(static_cast<std::int64_t>(run.cases_planned.size()), "case", "cases"));
+}
+
+std::string rigs_text(const std::vector<RunOfRig>& runs, const TextStyle& style) {
+    std::string out = counted(static_cast<std::int64_t>(runs.size()), "rig", "rigs") + "\n";
+    Table table{{{"rig", false, 0},
+                 {"pass", true, 0},
+                 {"fail", true, 0},
+                 {"invalid", true, 0},
+                 {"undecided", true, 0},
+                 {"not run", true, 0},
+                 {"status", true, 0},
+                 {"run folder", false, 1}},
+                {},
+                2};
+    for (const RunOfRig& run : runs) {
+        const bool ran = run.exit_status.has_value();
+        const auto cell = [&](std::size_t count) { return ran ? std::to_string(count) : std::string("-"); };
+        table.rows.push_back({printable(run.rig_file), cell(run.counts.pass), cell(run.counts.fail),
+                              cell(run.counts.invalid), cell(run.counts.undecided), cell(run.counts.not_run),
+                              ran ? std::to_string(*run.exit_status) : "not run",
+                              run.folder.empty() ? "-" : printable(run.folder)});
+    }
+    return out + laid_out(style, table);
 }
 
 std::string error_text(const Error& error, const TextStyle& style) {

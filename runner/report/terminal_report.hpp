@@ -7,6 +7,7 @@
 #include <optional>
 #include <string>
 #include <string_view>
+#include <vector>
 
 #include "runner/report/text_style.hpp"
 #include "runner/world/result.hpp"
@@ -25,6 +26,20 @@ std::string case_text(const RunResult& run, std::size_t index, const TextStyle& 
 
 /// The last lines: counts, what was not verified, the run's folder, what the report is not.
 std::string summary_text(const RunResult& run, const TextStyle& style);
+
+/// In place of start_text and board_text, of a run whose captures are judged again: which run, and what it was
+/// captured from. `written_by` is the version of halflsb that captured it, `own_plan` says whether the plan is its own.
+std::string judged_text(const RunResult& run, const std::string& written_by, bool own_plan, const TextStyle& style);
+
+/// One rig of several.
+struct RunOfRig {
+    std::string rig_file;
+    Counts counts;
+    std::string folder;
+    std::optional<int> exit_status;  ///< none: it did not run
+};
+/// The last lines of a call with several rigs.
+std::string rigs_text(const std::vector<RunOfRig>& runs, const TextStyle& style);
 
 /// An error of any kind: place, problem, remedy.
 std::string error_text(const Error& error, const TextStyle& style);

@@ -77,3 +77,28 @@ TEST_CASE("glob: star for any number of characters, question mark for one", "[cl
     // Would take 2^40 steps without care.
     CHECK_FALSE(matches_glob("*a*a*a*a*a*a*a*a*a*a*a*a*a*a*a*a*a*a*a*a*b", std::string(2000, 'a')));
 }
+
+TEST_CASE("labels: any of those asked for, within what --case selects", "[cli]") {
+    const std::vector<Names> labels{{"quick"}, {"quick", "slow"}, {}, {"slow"}};
+    using Indices = std::vector<std::size_t>;
+    const Indices all{0, 1, 2, 3};
+    CHECK(*select_labelled(all, labels, {}) == all);
+    CHECK(*select_labelled(all, labels, {"quick"}) == Indices{0, 1});
+    CHECK(*select_labelled(all, labels, {"quick", "slow"}) == Indices{0, 1, 3});
+    CHECK(*select_labelled({1, 2}, labels, {"quick"}) == Indices{1});
+}
+
+TEST_CASE("labels: one that no case has, or that leaves nothing, is a usage error with the labels there are", "[cli]") {
+    const std::vector<Names> labels{{"quick"}, {"slow", "quick"}, {}};
+    const auto unknown = select_labelled({0, 1, 2}, labels, {"quik"});
+    REQUIRE_FALSE(unknown);
+    CHECK(unknown.error().kind == ErrorKind::usage);
+    CHECK(to_text(unknown.error()) ==
+          "--label: no case has the label 'quik'\n  did you mean 'quick'? the plan's labels are: quick, slow");
+    const auto nothing = select_labelled({0}, labels, {"slow"});
+    REQUIRE_FALSE(nothing);
+    CHECK(to_text(nothing.error()) ==
+          "--label: none of the cases that --case selects has such a label\n  the plan's labels are: quick, slow");
+    CHECK(to_text(select_labelled({0}, {{}}, {"x"}).error()) ==
+          "--label: no case has the label 'x'\n  the plan's cases have no labels");
+}

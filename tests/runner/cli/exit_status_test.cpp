@@ -90,6 +90,31 @@ TEST_CASE("exit status: the table has every status once, ascending, each with a 
     CHECK(numbers == std::vector<int>{0, 1, 2, 3, 64, 65, 70, 73, 130});
 }
 
+TEST_CASE("exit status: of several runs in one call the worst, an interruption before all", "[cli]") {
+    CHECK(exit_status_of_all({0, 0}) == 0);
+    CHECK(exit_status_of_all({0, 2}) == 2);
+    CHECK(exit_status_of_all({2, 3, 0}) == 3);
+    CHECK(exit_status_of_all({3, 1, 2}) == 1);
+    CHECK(exit_status_of_all({1, 65}) == 65);
+    CHECK(exit_status_of_all({65, 70}) == 70);
+    CHECK(exit_status_of_all({1, 73}) == 73);
+    CHECK(exit_status_of_all({73, 130}) == 130);
+    CHECK(exit_status_of_all({}) == 70);
+    for (const int status : {130, 73, 70}) CHECK(stops_everything(status));
+    for (const int status : {0, 1, 2, 3, 64, 65}) CHECK_FALSE(stops_everything(status));
+}
+
+TEST_CASE("exit status: of captures judged again, what was never captured is the bench's", "[cli]") {
+    CHECK(exit_status_of_judgement(run_of({pass, pass})) == 0);
+    CHECK(exit_status_of_judgement(run_of({pass, undecided})) == 2);
+    CHECK(exit_status_of_judgement(run_of({pass, invalid, undecided})) == 3);
+    CHECK(exit_status_of_judgement(run_of({pass}, 1)) == 3);
+    CHECK(exit_status_of_judgement(ended(run_of({pass}, 1), ErrorKind::interrupted)) == 3);
+    CHECK(exit_status_of_judgement(ended(run_of({fail, pass}, 1), ErrorKind::interrupted)) == 1);
+    CHECK(exit_status_of_judgement(run_of({}, 1)) == 3);
+    CHECK(exit_status_of_judgement(run_of({})) == 64);
+}
+
 TEST_CASE("exit status: docs/exit-status.md holds the table", "[cli][docs]") {
     test::check_generated_part("exit-status.md", "exit status", exit_status_reference());
 }

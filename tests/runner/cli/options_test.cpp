@@ -51,7 +51,7 @@ TEST_CASE("options: check with its operand and rig, everything else as it is wit
     const Options options = options_of(check_both);
     CHECK(options.command == Command::check);
     CHECK(options.plan == "cw7.toml");
-    CHECK(options.rig == "bench.toml");
+    CHECK(options.rigs == Words{"bench.toml"});
     CHECK(options.case_patterns.empty());
     CHECK_FALSE(options.seed);
     CHECK_FALSE(options.image);
@@ -67,7 +67,7 @@ TEST_CASE("options: every option reaches its field, in any order, with blank or 
                                         "--rig=r=1.toml", "plan.toml", "--case=mains*", "--image", "cw7.elf", "--out",
                                         "o", "--root", "..", "--log", "l.txt", "--color", "always"});
     CHECK(options.plan == "plan.toml");
-    CHECK(options.rig == "r=1.toml");
+    CHECK(options.rigs == Words{"r=1.toml"});
     CHECK(options.case_patterns == Words{"tare step", "mains*"});
     CHECK(options.seed == 9007199254740991u);
     CHECK(options.image == "cw7.elf");
@@ -82,8 +82,40 @@ TEST_CASE("options: every option reaches its field, in any order, with blank or 
 
 TEST_CASE("options: predict needs no rig, ports nothing", "[cli]") {
     CHECK(options_of({"predict", "p"}).command == Command::predict);
-    CHECK(options_of({"predict", "p", "--rig", "r", "--case", "c", "--root", "d"}).rig == "r");
+    CHECK(options_of({"predict", "p", "--rig", "r", "--case", "c", "--root", "d"}).rigs == Words{"r"});
     CHECK(options_of({"ports", "--verbose"}).command == Command::ports);
+}
+
+TEST_CASE("options: judge takes a run and perhaps a plan, accept a run, check several rigs", "[cli]") {
+    const Options judge = options_of({"judge", "out/run", "--case", "a", "other.toml", "--label", "quick", "--json"});
+    CHECK(judge.command == Command::judge);
+    CHECK(judge.run == "out/run");
+    CHECK(judge.plan == "other.toml");
+    CHECK(judge.labels == Words{"quick"});
+    CHECK(judge.json);
+    CHECK(options_of({"judge", "out/run"}).plan.empty());
+    const Options accept = options_of({"accept", "out/run", "--samples", "1073741824", "--root", "."});
+    CHECK(accept.run == "out/run");
+    CHECK(accept.kept_samples == 1073741824);
+    CHECK(options_of({"check", "p", "--rig", "a", "--rig=b"}).rigs == Words{"a", "b"});
+    CHECK(options_of({"check", "p", "--list"}).list);
+    CHECK(options_of({"check", "p", "--list"}).rigs.empty());
+}
+
+TEST_CASE("options: a double dash ends them, and what follows is an operand whatever it looks like", "[cli]") {
+    CHECK(options_of({"predict", "--", "--help"}).plan == "--help");
+    CHECK(options_of({"predict", "--rig", "r", "--", "-p.toml"}).plan == "-p.toml");
+    CHECK(options_of({"predict", "p", "--"}).plan == "p");
+    const Options judge = options_of({"judge", "run", "--", "--json"});
+    CHECK(judge.plan == "--json");
+    CHECK_FALSE(judge.json);
+    CHECK(options_of({"judge", "--", "--", "-"}).run == "--");
+    CHECK(error_of({"predict", "p", "--", "q"}) == "'q' is one operand too many\n  predict takes one PLAN");
+    CHECK(error_of({"predict", "p", "--rig", "--"}) == "--rig needs a value\n  write --rig RIG");
+    CHECK(error_of({"predict", "--"}) ==
+          "predict needs a PLAN\n  for example: halflsb predict cw7.toml --rig bench.toml");
+    // A plan may be called as a command is.
+    CHECK(options_of({"predict", "check"}).plan == "check");
 }
 
 TEST_CASE("options: without arguments a short usage on standard error, status 64", "[cli]") {
@@ -92,6 +124,8 @@ TEST_CASE("options: without arguments a short usage on standard error, status 64
     CHECK(answer.exit_status == 64);
     CHECK(answer.text ==
           "usage: halflsb check PLAN --rig RIG\n"
+          "       halflsb judge RUN [PLAN]\n"
+          "       halflsb accept RUN\n"
           "       halflsb predict PLAN\n"
           "       halflsb ports\n"
           "       halflsb --help\n"
@@ -131,7 +165,7 @@ TEST_CASE("options: an unknown word is answered with the nearest known one", "[c
 
 TEST_CASE("options: an option in the wrong place says where it belongs", "[cli]") {
     CHECK(error_of({"predict", "p", "--image", "f"}) == "--image is not an option of predict\n  it belongs to check");
-    CHECK(error_of({"ports", "--case=x"}) == "--case is not an option of ports\n  it belongs to check, predict");
+    CHECK(error_of({"ports", "--case=x"}) == "--case is not an option of ports\n  it belongs to check, judge, predict");
     CHECK(error_of({"--rig", "r", "check", "p"}) == "--rig stands before the command\n  write it behind the command");
 }
 
@@ -146,7 +180,14 @@ TEST_CASE("options: what is missing is named with an example", "[cli]") {
 TEST_CASE("options: what is too much or out of range is quoted", "[cli]") {
     CHECK(error_of(with(check_both, {"other.toml"})) == "'other.toml' is one operand too many\n  check takes one PLAN");
     CHECK(error_of({"ports", "x"}) == "'x' is one operand too many\n  ports takes none");
-    CHECK(error_of(with(check_both, {"--rig", "s"})) == "--rig is given 2 times\n  give it once");
+    CHECK(error_of({"predict", "p", "--rig", "r", "--rig", "s"}) == "--rig is given 2 times\n  give it once");
+    CHECK(error_of({"judge", "run", "plan", "third"}) ==
+          "'third' is one operand too many\n  judge takes one RUN and at most one PLAN");
+    CHECK(error_of({"judge", "run", ""}) == "the PLAN is an empty path" + hint);
+    for (const std::string samples : {"0", "-1", "1.5", "1073741825", "many"}) {
+        CHECK(error_of({"accept", "run", "--samples", samples}) ==
+              "--samples: '" + samples + "' is not a whole number from 1 to 1073741824" + hint);
+    }
     CHECK(error_of(with(check_both, {"--verbose=3"})) == "--verbose takes no value\n  leave away what follows it");
     for (const std::string seed : {"-5", "1.5", "0x10", "9007199254740992", "18446744073709551616", " 1", "1 "}) {
         CHECK(error_of(with(check_both, {"--seed", seed})) ==
@@ -183,6 +224,7 @@ TEST_CASE("options: the parser knows exactly the options of the table, per comma
             const bool needs_rig = command.command == Command::check && option.name != "--rig";
             if (needs_rig) words = with(words, {"--rig", "r"});
             words.emplace_back(option.name);
+            if (option.name == "--list") words = {"check", "p", "--list"};
             if (!option.argument.empty()) words.push_back(option.name == "--color" ? "auto" : "1");
             const bool known =
                 std::find(option.commands.begin(), option.commands.end(), command.command) != option.commands.end();

@@ -104,6 +104,21 @@ TEST_CASE("run folder: named by UTC time and plan, numbered where the name is ta
     CHECK(fourth->path() == ".halflsb/20261201T093000Z-cw7-acceptance-4");
 }
 
+TEST_CASE("run folder: of several runs in one call, the default's name ends in the rig's", "[record]") {
+    const Scratch scratch;
+    DiskFiles files;
+    RunFolderWish one = wish();
+    one.note = "bench 3";
+    CHECK(open_run_folder(files, one)->path() == ".halflsb/20261201T093000Z-cw7-acceptance-bench-3");
+    CHECK(open_run_folder(files, one)->path() == ".halflsb/20261201T093000Z-cw7-acceptance-bench-3-2");
+    REQUIRE(open_folder_of_runs(files, "all"));
+    CHECK(open_run_folder(files, wish("all/bench-3")));
+    const auto again = open_folder_of_runs(files, "all");
+    REQUIRE_FALSE(again);
+    CHECK(to_text(again.error()) ==
+          "all: it is not empty, and a record must not mix two runs\n  give a new or an empty folder with --out");
+}
+
 TEST_CASE("run folder: the proof that it is writable leaves nothing behind", "[record]") {
     const Scratch scratch;
     DiskFiles files;
@@ -152,21 +167,27 @@ TEST_CASE("run folder: plan and rig are kept as they were, run.json and junit.xm
     auto folder = open_run_folder(files, wish("out"));
     REQUIRE(folder);
     const std::string plan("title = \"\xff\0\"\r\n", 13);
-    REQUIRE(folder->save_inputs(plan, "[board]\n"));
+    RunResult run = sample::run();
+    run.plan_text = plan;
+    run.plan_parts = {{"", plan}, {"common.toml", "x = 1\n"}, {"data/a/belt.npy", std::string("\0\1", 2)}};
+    REQUIRE(folder->save_inputs(run));
+    CHECK(content("out/plan-files/common.toml") == "x = 1\n");
+    CHECK(content("out/plan-files/data/a/belt.npy") == std::string("\0\1", 2));
     CHECK(content("out/plan.toml") == plan);
     CHECK(content("out/rig.toml") == "[board]\n");
 
-    const RunResult run = sample::run();
     REQUIRE(folder->save(run, false, "<testsuites/>"));
     CHECK(nlohmann::json::parse(content("out/run.json")).at("finished") == false);
     REQUIRE(folder->save(run, true, "<testsuites></testsuites>"));
     CHECK(nlohmann::json::parse(content("out/run.json")).at("finished") == true);
     CHECK(content("out/junit.xml") == "<testsuites></testsuites>");
-    CHECK(std::distance(fs::directory_iterator("out"), {}) == 5);  // and captures/
+    CHECK(std::distance(fs::directory_iterator("out"), {}) == 6);  // and captures/, plan-files/
 }
 
 TEST_CASE("run folder: whichever writing fails, the files written before stay whole", "[record]") {
-    const RunResult run = sample::run();
+    RunResult run = sample::run();
+    run.plan_text = "plan";
+    run.rig_text = "rig";
     // The probe, plan, rig, run.json, junit.xml, run.json, junit.xml; each in turn is the first to fail.
     for (int good = 1; good <= 7; ++good) {
         INFO(good << " good writes");
@@ -179,7 +200,7 @@ TEST_CASE("run folder: whichever writing fails, the files written before stay wh
             if (!outcome) CHECK(outcome.error().kind == ErrorKind::output);
             all_good = all_good && static_cast<bool>(outcome);
         };
-        note(folder->save_inputs("plan", "rig"));
+        note(folder->save_inputs(run));
         note(folder->save(run, false, "first"));
         note(folder->save(run, true, "second"));
         CHECK(all_good == (good == 7));

@@ -273,3 +273,79 @@ TEST_CASE("report: the cautions are whole sentences in lines that fit", "[report
           "injection point, not a safety approval.\n"
           "Local codes and licensed practice decide whether a device may be used.\n");
 }
+
+TEST_CASE("terminal report: how a case was captured stands below its line, where it is not as usual", "[report]") {
+    RunResult run = sample::run();
+    run.attempts_allowed = 3;
+    CaseResult& result = run.cases[0];
+    result.start = Start::flush;
+    result.start_samples = 1234;
+    result.settings = {{"average-points", 8, {}}, {"gain", -1, {}}};
+    result.rate_hz = 600.0;
+    AttemptResult attempt;
+    attempt.invalid = {ErrorKind::bench, "/dev/ttyUSB0", "the board was silent for 2 s", "check the cable"};
+    result.attempts = {attempt};
+    TextStyle style;
+    style.width = 100;
+    const std::string text = case_text(run, 0, style);
+    CHECK(text.substr(text.find('\n') + 1) ==
+          "  start     flush, 1234 zeros first\n"
+          "  settings  average-points = 8, gain = -1\n"
+          "  rate      600 Hz\n"
+          "  attempts  attempt 2 of 3; attempt 1 was invalid: the board was silent for 2 s\n");
+    result.start = Start::running;
+    result.start_samples = 1;
+    CHECK(case_text(run, 0, style).find("  start     running, the first 1 sample is judged by no rule\n") !=
+          std::string::npos);
+}
+
+TEST_CASE("terminal report: a rule of one channel of several says which", "[report]") {
+    RunResult run = sample::run();
+    run.signal.channels = 2;
+    run.cases[1].rules[0].channel = 2;
+    run.cases[1].rules[1].channel = 1;
+    TextStyle style;
+    style.width = 100;
+    const std::string text = case_text(run, 1, style);
+    CHECK(text.find("  error, channel 2: fail\n") != std::string::npos);
+    CHECK(text.find("  latency, channel 1: pass, 0 samples\n") != std::string::npos);
+    run.cases[0].rules[0].channel = 2;
+    CHECK(case_text(run, 0, style).find("max 0.499 LSB of 0.5 on channel 2") != std::string::npos);
+    CHECK(board_text(run, std::nullopt, style).find("q15 in, q15 out, 1200 Hz, 2 channels\n") != std::string::npos);
+}
+
+TEST_CASE("terminal report: a response that changed is compared with the accepted run", "[report]") {
+    RunResult run = sample::run();
+    RuleVerdict& rule = run.cases[1].rules[0];
+    rule.rule.kind = UnchangedRule{"baseline", std::nullopt, nullptr, {}};
+    rule.reference = "accepted";
+    const std::string text = case_text(run, 1, TextStyle{});
+    CHECK(text.find("  unchanged: fail\n    against the accepted run, asked at cw7.toml:20:3\n") != std::string::npos);
+}
+
+TEST_CASE("terminal report: several rigs end in a table", "[report]") {
+    TextStyle style;
+    style.width = 100;
+    CHECK(rigs_text({{"a.toml", {2, 0, 0, 0, 0}, "runs/a", 0},
+                     {"b.toml", {1, 1, 0, 0, 0}, "runs/b", 1},
+                     {"c.toml", {}, "", {}}},
+                    style) ==
+          "3 rigs\n"
+          "  rig     pass  fail  invalid  undecided  not run   status  run folder\n"
+          "  a.toml     2     0        0          0        0        0  runs/a\n"
+          "  b.toml     1     1        0          0        0        1  runs/b\n"
+          "  c.toml     -     -        -          -        -  not run  -\n");
+}
+
+TEST_CASE("terminal report: captures judged again say where they are from", "[report]") {
+    RunResult run = sample::run();
+    run.folder = "runs/a";
+    TextStyle style;
+    style.width = 100;
+    const std::string text = judged_text(run, "0.1.0", true, style);
+    CHECK(text.rfind("  run       runs/a, captured 2026-12-01T09:30:00Z by halflsb 0.1.0\n"
+                     "  plan      cw7.toml, CW-7 load-cell filter, release acceptance, as recorded\n",
+                     0) == 0);
+    CHECK(text.find("wire") == std::string::npos);
+    CHECK(judged_text(run, "0.1.0", false, style).find("as recorded") == std::string::npos);
+}

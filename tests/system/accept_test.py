@@ -1,0 +1,134 @@
+"""accept: what a baseline holds, what it refuses, and that `unchanged` sees a difference anywhere in a case."""
+import hashlib
+import json
+import os
+import tomllib
+
+import numpy as np
+
+from support import NOISE, STEP, Case, halflsb, main
+import support
+
+UNCHANGED = '[[rule]]\nkind = "unchanged"\nbaseline = "baseline"\n'
+ERROR = '[[rule]]\nkind = "error"\nmax_lsb = 1.0\n'
+
+
+class Accept(Case):
+    def captured(self, name="run", cases=NOISE + STEP, faults=(), status=None, rules=ERROR + UNCHANGED, options=(), **more):
+        with self.virtual_board("--serial", "CW7-0003", *[word for fault in faults for word in ("--fault", fault)]):
+            done = halflsb("check", self.plan(cases, rules=rules, **more), "--rig",
+                           self.rig(wire="answer_s = 0.5\ngreet_s = 1.0\n"), "--out", self.folder / name, *options, cwd=self.folder)
+        if status is not None:
+            self.assert_status(done, status)
+        return done
+
+    def accept(self, name="run", *words, status=0):
+        done = halflsb("accept", self.folder / name, *words, cwd=self.folder)
+        self.assert_status(done, status)
+        return done
+
+    def baseline(self):
+        return tomllib.loads((self.folder / "baseline" / "baseline.toml").read_text())
+
+    def nothing_written(self):
+        self.assertFalse((self.folder / "baseline").exists())
+
+    def test_a_baseline_holds_hashes_and_samples_of_the_captures(self):
+        self.captured(status=2)
+        self.assertIn("wrote 3 files", self.accept().out)
+        made = self.baseline()
+        self.assertEqual((made["board_serial"], made["output"], made["channels"]), ("CW7-0003", "q15", 1))
+        self.assertEqual(made["plan_sha256"], hashlib.sha256((self.folder / "plan.toml").read_bytes()).hexdigest())
+        for case, recorded in zip(made["case"], self.record()["cases"]):
+            capture = np.load(self.folder / "run" / recorded["capture"]["file"])
+            kept = np.load(self.folder / "baseline" / case["kept"])
+            self.assertEqual(case["name"], recorded["name"])
+            self.assertEqual(case["samples"], len(capture))
+            self.assertEqual(case["response_sha256"], hashlib.sha256(capture.tobytes()).hexdigest())
+            self.assertEqual(case["stimulus_sha256"], recorded["stimulus"]["sha256"])
+            self.assertTrue(np.array_equal(kept, capture))
+        self.captured("again", status=0)
+
+    def test_a_long_case_keeps_its_first_samples_and_hashes_of_stretches(self):
+        self.captured(status=2)
+        self.accept("run", "--samples", "1000")
+        noise = self.baseline()["case"][0]
+        capture = np.load(self.folder / "run" / self.record()["cases"][0]["capture"]["file"])
+        self.assertEqual((noise["kept_samples"], noise["block_samples"], len(noise["block_sha256"])), (1000, 24, 250))
+        self.assertTrue(np.array_equal(np.load(self.folder / "baseline" / noise["kept"]), capture[:1000]))
+        for i, sha256 in enumerate(noise["block_sha256"]):
+            self.assertEqual(sha256, hashlib.sha256(capture[24 * i:24 * i + 24].tobytes()).hexdigest())
+        self.captured("again", status=0)
+
+    def test_a_changed_firmware_fails_and_may_be_accepted(self):
+        self.captured(status=2)
+        self.accept()
+        done = self.captured("changed", faults=("A01",), status=1)
+        self.assertIn("unchanged", done.out)
+        before, after = (np.load(self.folder / run / self.record(run)["cases"][0]["capture"]["file"]) for run in ("run", "changed"))
+        first = int(np.flatnonzero(before != after)[0])
+        self.assertIn(f"noise: first different sample {first}, was {before[first]}, is {after[first]}", self.accept("changed").out)
+        self.captured("third", faults=("A01",), status=0)
+        self.captured("fourth", status=1)
+
+    def test_cases_that_this_run_does_not_have_stay(self):
+        self.captured(status=2)
+        self.accept()
+        self.captured("some", options=("--case", "step"), status=0)
+        out = self.accept("some").out
+        self.assertRegex(out, r"(?m)^  same +step$")
+        self.assertRegex(out, r"(?m)^  stays +noise$")
+        self.assertEqual([case["name"] for case in self.baseline()["case"]], ["noise", "step"])
+        self.captured("again", status=0)
+
+    def test_what_is_not_whole_or_fails_is_refused_by_case_and_rule(self):
+        self.captured(faults=("A01",), rules=ERROR.replace("1.0", "0.5") + UNCHANGED, status=1)
+        done = self.accept(status=65)
+        self.assertRegex(done.err, r"case 'noise': rule error of .*plan\.toml:\d+:\d+ fails")
+        self.nothing_written()
+        self.captured("invalid", cases=NOISE + NOISE.replace('"noise"\n[', '"second"\n['), faults=("unplug=30",), status=3)
+        self.assertIn("case 'second': its capture is invalid", self.accept("invalid", status=65).err)
+        self.nothing_written()
+
+    def test_a_plan_without_the_rule_is_told_the_words(self):
+        self.captured(rules=ERROR, status=0)
+        err = self.accept(status=65).err
+        self.assertIn('kind = "unchanged"\n', err)
+        self.nothing_written()
+
+    def test_an_edited_capture_is_refused(self):
+        self.captured(status=2)
+        path = self.folder / "run" / self.record()["cases"][0]["capture"]["file"]
+        path.write_bytes(path.read_bytes()[:-2] + b"\x01\x00")
+        self.assertIn("it was edited", self.accept(status=65).err)
+        self.nothing_written()
+
+    def test_the_baseline_stays_below_the_root(self):
+        self.captured(status=2)
+        outside = self.folder / "outside"
+        outside.mkdir()
+        inside = self.folder / "inside"
+        inside.mkdir()
+        (inside / "baseline").symlink_to(outside)
+        self.assertIn("it leads out of the root", self.accept("run", "--root", inside, status=65).err)
+        self.assertEqual(list(outside.iterdir()), [])
+        self.assertIn("there is no such folder", self.accept("run", "--root", self.folder / "none", status=65).err)
+
+    def test_a_damaged_baseline_is_not_overwritten(self):
+        self.captured(status=2)
+        self.accept()
+        file = self.folder / "baseline" / "baseline.toml"
+        file.write_text("title = \n")
+        self.accept(status=65)
+        self.assertEqual(file.read_text(), "title = \n")
+
+    def test_a_folder_that_cannot_be_written(self):
+        self.captured(status=2)
+        (self.folder / "baseline").write_text("a file in the way")
+        done = halflsb("accept", self.folder / "run", cwd=self.folder)
+        self.assertIn(done.status, (65, 73))
+        self.assertEqual((self.folder / "baseline").read_text(), "a file in the way")
+
+
+if __name__ == "__main__":
+    main()
