@@ -24,8 +24,6 @@ struct Rig {
 
     std::vector<std::vector<std::string>> before_run;  ///< argument lists, in order
     double before_run_limit_s = 0.0;                   ///< of each command
-
-    int attempts = 1;  ///< at a case whose capture is not whole; a failed or undecided case never runs again
 };
 
 /// The arguments with {image} replaced.

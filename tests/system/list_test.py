@@ -55,7 +55,7 @@ class List(Case):
             board.__enter__()
             self.addCleanup(board.stop)
         words = [word for rig in rigs for word in ("--rig", rig)]
-        done = halflsb("check", self.plan(STEP), *words, *options, cwd=self.folder)
+        done = halflsb("check", self.plan(NOISE), *words, *options, cwd=self.folder)
         self.assert_status(done, status)
         return done
 
@@ -80,7 +80,7 @@ class List(Case):
 
     def test_a_plan_whose_name_is_no_utf8_can_be_rerun_by_pasting(self):
         name = os.fsencode(self.folder) + b"/pl\xff'an.toml"
-        os.rename(os.fsencode(self.plan(STEP)), name)
+        os.rename(os.fsencode(self.plan(NOISE)), name)
         with self.virtual_board("--fault", "A01"):
             done = subprocess.run([support.HALFLSB, "check", name, "--rig", self.rig(), "--out", self.folder / "run"], capture_output=True,
                                   cwd=self.folder, timeout=support.LIMIT_S)
