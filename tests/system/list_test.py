@@ -64,7 +64,7 @@ class List(Case):
         statuses = [self.record(f"all/{letter}")["verdict"]["counts"]["fail"] for letter in "abc"]
         self.assertEqual(statuses, [0, 1, 0])
         self.assertRegex(done.out, r"(?m)^3 rigs$")
-        self.assertRegex(done.out, r"(?m)^  \S*b\.toml +0 +1 +0 +0 +0 +1 ")
+        self.assertRegex(done.out, r"(?m)^  \S*b\.toml +0 +1 +0 +0 +0 +1( |$)")
 
     def test_a_bench_that_fails_does_not_stop_the_others_and_default_folders_name_the_rig(self):
         self.check_on(("silent", None), status=3)
