@@ -21,7 +21,7 @@ std::string stimulus_file_name(const std::string& capture_file) {
 
 Outcome<std::optional<Recorder>> open_sent(const RunDesk& desk, const Case& the_case, const std::string& file) {
     std::optional<Recorder> recorder;
-    if (the_case.shape != "file") return recorder;
+    if (!is_explicit(the_case.shape, the_case.stimulus_values)) return recorder;
     if (auto made = desk.files.make_directories(desk.folder.path_of("stimuli")); !made) return made.error();
     auto opened =
         Recorder::open(desk.files, desk.folder.path_of(file), desk.plan.signal.input, desk.plan.signal.channels);

@@ -171,6 +171,7 @@ public:
         reader_.entry(each_word);
         // Known before its inner tables are read, so that a key of the case under their headers is told from
         // an unknown one.
+        reader_.entry(each_word);
         const TomlValue* stimulus_table = reader_.table("stimulus", true);
         the_case.settings = read_settings(context_, reader_);
 

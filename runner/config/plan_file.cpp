@@ -37,7 +37,7 @@ Place place_of(const PlanPosition& position, const Problems& problems) {
 
 /// A latency rule for every case is asked of the cases that can tell it and left to them by the others,
 /// as the implicit one is; when none can, it is refused.
-void settle_common_latency(Plan& plan, const std::vector<Rule>& common, Problems& problems) {
+void settle_common_latency(Plan& plan, const std::vector<Rule>& common, bool is_whole, Problems& problems) {
     const auto written = std::find_if(common.begin(), common.end(),
                                       [](const Rule& r) { return std::holds_alternative<LatencyRule>(r.kind); });
     if (written == common.end()) return;
@@ -51,7 +51,8 @@ void settle_common_latency(Plan& plan, const std::vector<Rule>& common, Problems
             is_told = is_told || !latency->implicit;
         }
     }
-    if (is_asked && !is_told) {
+    // A case that was refused for something else might have told it.
+    if (is_whole && is_asked && !is_told) {
         problems.add(place_of(written->position, problems), "no case of this plan can tell its latency",
                      "add a case with noise (shape = \"noise\", level_ratio = 0.5, length_samples = 4096), or leave "
                      "the rule out");
@@ -153,6 +154,7 @@ private:
         plan_.signal = *facts.signal;
         plan_.filter = facts.filters->chain;
         plan_.filter_is_unknown = facts.filters->is_unknown;
+        const bool is_whole = problems_.count() == 0;
         for (ReadCase& read : cases) {
             if (!read.is_clean) continue;
             add_common_rules(read.the_case, common, plan_.filter_is_unknown);
@@ -161,7 +163,7 @@ private:
         const std::size_t before = problems_.count();
         finish_cases(context_, plan_);
         if (problems_.count() != before) return;
-        settle_common_latency(plan_, common, problems_);
+        settle_common_latency(plan_, common, is_whole, problems_);
         for (const Case& the_case : plan_.cases) {
             for (const Refusal& refusal : refusals(plan_, the_case)) {
                 problems_.add(place_of(refusal.position, problems_), refusal.problem, refusal.remedy);

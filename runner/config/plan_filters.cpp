@@ -87,7 +87,7 @@ public:
 private:
     void read_stage(const TomlValue& table, std::size_t stage_count) {
         TableReader reader(context_, table, "[[filter]]", &top_);
-        const Recipe* recipe = reader.chosen_recipe("kind", filter_kinds());
+        const Recipe* recipe = reader.chosen_recipe("kind", filter_recipes());
         if (recipe == nullptr) return;
         PlanFilters::Stage stage{std::string(recipe->name), reader.parameters(*recipe), {}, false};
         if (recipe->name == unknown_kind) {

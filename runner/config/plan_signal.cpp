@@ -31,8 +31,8 @@ ValueKind value_kind(const SampleFormat& format) {
 }
 
 /// Between kinds of value the plan must say how values go from one to the other; within one a value is a value.
-void check_kinds(TableReader& reader, const ParameterValues& values, const Signal& signal) {
-    const bool given = values.has("output_per_input");
+void check_kinds(TableReader& reader, const Signal& signal) {
+    const bool given = reader.entry("output_per_input") != nullptr;  // be it wrong: that was told
     const bool is_same = value_kind(signal.input) == value_kind(signal.output);
     const std::string pair = std::string(signal.input.name) + " in and " + std::string(signal.output.name) + " out";
     if (!is_same && !given) {
@@ -97,7 +97,7 @@ std::optional<Signal> read_signal(ReadContext& context, TableReader& top) {
     if (input && output) {
         signal.input = *input;
         signal.output = *output;
-        check_kinds(reader, values, signal);
+        check_kinds(reader, signal);
     }
     if (!reader.is_clean()) return std::nullopt;
     signal.rate_hz = *values.number(recipe, "rate_hz");

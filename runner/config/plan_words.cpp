@@ -1,6 +1,5 @@
 #include "runner/config/plan_words.hpp"
 
-#include "oracle/filters/filter.hpp"
 #include "oracle/judge/plan.hpp"
 #include "stimuli/rounding.hpp"
 #include "stimuli/sample_format.hpp"
@@ -161,17 +160,6 @@ const Recipe& case_stimulus_recipe() {
           .maximum = 16,
           .help = "The channel that is driven, counted from 1; the others get zeros. When left out all are driven."}}};
     return recipe;
-}
-
-const std::vector<Recipe>& filter_kinds() {
-    static const std::vector<Recipe> kinds = [] {
-        std::vector<Recipe> all = filter_recipes();
-        if (find_recipe(all, unknown_kind) == nullptr)
-            all.push_back(
-                {unknown_kind, "A filter that nobody documented: only rules that need no reference hold.", {}});
-        return all;
-    }();
-    return kinds;
 }
 
 }  // namespace halflsb

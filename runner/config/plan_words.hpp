@@ -2,8 +2,8 @@
 // and the reference in docs/plan.md.
 #pragma once
 
+#include <cstddef>
 #include <string_view>
-#include <vector>
 
 #include "stimuli/parameter.hpp"
 
@@ -14,8 +14,7 @@ const Recipe& signal_recipe();         ///< [signal]
 const Recipe& case_recipe();           ///< [[case]]; `labels` and [case.settings] are beside it
 const Recipe& case_stimulus_recipe();  ///< [case.stimulus], whatever the shape
 
-/// Every kind of [[filter]]: those that have a design, and the unknown one.
-const std::vector<Recipe>& filter_kinds();
+/// The kind of [[filter]] that has no design.
 inline constexpr std::string_view unknown_kind = "unknown";
 
 inline constexpr std::string_view labels_word = "labels";

@@ -129,6 +129,11 @@ std::optional<double> number_of(const Parameter& parameter, const TomlValue& val
                              range_remedy(parameter, wanted));
         return std::nullopt;
     }
+    if (parameter.above_minimum && !(number > parameter.minimum)) {
+        context.problems.add(value.place, name + " = " + shown + " is not above " + number_text(parameter.minimum),
+                             range_remedy(parameter, wanted));
+        return std::nullopt;
+    }
     if (!(number <= parameter.maximum)) {
         context.problems.add(value.place, name + " = " + shown + " is above " + number_text(parameter.maximum),
                              range_remedy(parameter, wanted));

@@ -5,6 +5,8 @@
 #include "oracle/filters/filter.hpp"
 #include "oracle/judge/rule.hpp"
 #include "runner/config/bands.hpp"
+#include "runner/config/plan_each.hpp"
+#include "runner/config/plan_tree.hpp"
 #include "runner/config/plan_words.hpp"
 #include "runner/config/reader.hpp"
 #include "runner/config/rig_words.hpp"
@@ -52,7 +54,7 @@ std::string type_text(const Parameter& parameter) {
 std::string default_text(const Parameter& parameter) {
     if (parameter.required) return "required";
     if (parameter.default_value) return number_text(*parameter.default_value);
-    if (parameter.type == ParameterType::choice && !parameter.choices.empty())
+    if (parameter.type == ParameterType::choice && !parameter.choices.empty() && !parameter.optional_choice)
         return "`\"" + std::string(parameter.choices.front()) + "\"`";
     return "none";
 }
@@ -102,14 +104,17 @@ std::string catalogue(std::string_view heading, std::string_view key, const std:
 }  // namespace
 
 std::string plan_reference() {
-    return section("### The top of the file", plan_recipe()) + section("### `[signal]`", signal_recipe()) +
+    return section("### The top of the file", plan_recipe(),
+                   row(include_word, "list of files, under the root", "", "none", include_help)) +
+           section("### `[signal]`", signal_recipe()) +
            section("### `[arithmetic]` and `[filter.arithmetic]`", arithmetic_recipe()) +
-           catalogue("### `[[filter]]`", "kind", filter_kinds()) +
+           catalogue("### `[[filter]]`", "kind", filter_recipes()) +
            catalogue("### `[[rule]]` and `[[case.rule]]`", "kind", rule_recipes()) +
            section("#### A band", band_recipe()) +
            section("### `[[case]]`", case_recipe(),
                    row(labels_word, "list of text", "", "none", labels_help) +
-                       row(settings_word, "table of whole numbers", "", "none", settings_help)) +
+                       row(settings_word, "table of whole numbers", "", "none", settings_help) +
+                       row(each_word, "table of lists", "", "none", each_help)) +
            section("### `[case.stimulus]`", case_stimulus_recipe()) +
            catalogue("#### Shapes", "shape", stimulus_recipes());
 }

@@ -51,7 +51,7 @@ private:
     Outcome<void> discard_stale_input();
     Outcome<message::Bytes> ask(const Question& question, Patience patience);
     Outcome<message::Counters> ask_counters();
-    /// The most samples of a block whose words fit the largest frame (docs/wire.md, section 3).
+    /// The most samples of a block whose words fit the largest frame (docs/wire.md, section 2.2).
     int most_block_samples() const;
     Outcome<void> await_answers();
     Outcome<void> begin_figures();

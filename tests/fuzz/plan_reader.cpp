@@ -6,6 +6,7 @@
 #include <string_view>
 
 #include "runner/config/plan_file.hpp"
+#include "runner/config/resolved_plan.hpp"
 #include "tests/fuzz/problem_text.hpp"
 #include "tests/support/fake_files.hpp"
 
@@ -39,24 +40,43 @@ void check_usable(const Plan& plan) {
     }
 }
 
+/// What a plan is understood to be is a plan too, and printed again the same text.
+void check_printed(FakeFiles files, const Plan& plan) {
+    // Some rounds of reading each default that does not fit; a fuzzer finds the plan with the most of them.
+    if (plan.cases.size() > 20) return;
+    const auto printed = resolved_plan("p/plan.toml", files, {"p", std::nullopt});
+    const auto* text = std::get_if<std::string>(&printed);
+    fuzz::require(text != nullptr, "a plan that is taken is printed");
+    files.contents["p/plan.toml"] = *text;
+    const auto again = resolved_plan("p/plan.toml", files, {"p", std::nullopt});
+    const auto* same = std::get_if<std::string>(&again);
+    fuzz::require(same != nullptr && *same == *text, "a printed plan is read and printed the same", *text);
+}
+
 }  // namespace
 
-/// A plan, and behind a NUL byte the file taps.txt beside it.
+/// A plan, and behind a NUL byte each the files taps.txt and common.toml beside it.
 extern "C" int LLVMFuzzerTestOneInput(const std::uint8_t* data, std::size_t size) {
     const std::string_view text(reinterpret_cast<const char*>(data), size);
     const std::size_t cut = std::min(text.find('\0'), size);
     FakeFiles files;
     files.contents["p/plan.toml"] = text.substr(0, cut);
-    if (cut < size) files.contents["p/taps.txt"] = text.substr(cut + 1);
+    if (cut < size) {
+        const std::string_view rest = text.substr(cut + 1);
+        const std::size_t second = std::min(rest.find('\0'), rest.size());
+        files.contents["p/taps.txt"] = rest.substr(0, second);
+        if (second < rest.size()) files.contents["p/common.toml"] = rest.substr(second + 1);
+    }
     if (may_take_long(text)) return 0;
     const auto read = read_plan("p/plan.toml", files, {"p", std::nullopt});
     for (const std::string& path : files.read_paths) {
         fuzz::require(path.starts_with("p/"), "a plan reads nothing outside the root", path);
     }
     if (const auto* problems = std::get_if<ReadProblems>(&read)) {
-        fuzz::require_whole_messages(*problems, {"p/plan.toml", "p/taps.txt", "taps.txt"});
+        fuzz::require_whole_messages(*problems, {"p/plan.toml", "p/taps.txt", "p/common.toml", "taps.txt"});
     } else {
         check_usable(std::get<Plan>(read));
+        check_printed(files, std::get<Plan>(read));
     }
     return 0;
 }

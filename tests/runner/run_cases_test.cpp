@@ -108,6 +108,22 @@ TEST_CASE("start: flush of a first case opens the stream itself", "[run]") {
     CHECK(bench.run.cases[0].verdict == CaseVerdict::pass);
 }
 
+TEST_CASE("start: zeros of an unsigned format are its mid-code", "[run]") {
+    const auto u16 = sample_format("u16");
+    REQUIRE(u16);
+    RunBench bench;
+    bench.model.filters[0].input = bench.model.filters[0].output = u16->wire_number;
+    bench.plan().signal.input = bench.plan().signal.output = *u16;
+    bench.add_noise("loud", 0.9);
+    Case& quiet = bench.add_noise("quiet", 0.01, 300);
+    quiet.start = Start::flush;
+    quiet.start_samples = 15;
+    REQUIRE(bench.go());
+    CHECK(bench.run.cases[0].verdict == CaseVerdict::pass);
+    CHECK(bench.run.cases[1].verdict == CaseVerdict::pass);
+    CHECK(bench.model.starts == 1);
+}
+
 TEST_CASE("start: running goes on where the case before ended, and all of it is recorded", "[run]") {
     RunBench bench;
     bench.add_noise("loud", 0.9);
@@ -278,4 +294,45 @@ TEST_CASE("wire time: the zeros of a flush count", "[run]") {
     REQUIRE(bench.observer.wire_s);
     // 16-bit words in blocks of 64: RESPONSE has 144 bytes.
     CHECK_THAT(*bench.observer.wire_s, Catch::WithinRel((2 * 1000 + 6400) / 64.0 * 144 * 10 / 921600, 0.01));
+}
+
+TEST_CASE("stimulus: an explicit one is kept beside the captures", "[run]") {
+    RunBench bench;
+    SignalFile logged;
+    logged.path = "stimuli/tare.npy";
+    logged.whole_numbers = true;
+    logged.columns.resize(1);
+    for (int n = 0; n < 500; ++n) logged.columns[0].push_back((n * 7919) % 20011 - 10000);
+    bench.add_noise("a recipe");
+    Case& from_file =
+        bench.add_case("from a file", "file", values({{"file", std::make_shared<const SignalFile>(logged)}}));
+    from_file.start = Start::flush;
+    from_file.start_samples = 40;
+    REQUIRE(bench.go());
+    CHECK(bench.run.cases[0].stimulus.file.empty());
+    const StimulusFacts& facts = bench.run.cases[1].stimulus;
+    CHECK(facts.shape == "file");
+    CHECK(facts.file == "stimuli/002-from-a-file.npy");
+    const std::vector<Code> kept = bench.codes_of(facts.file, bench.plan().signal.input);
+    REQUIRE(kept.size() == 500);
+    for (std::size_t n = 0; n < kept.size(); ++n) REQUIRE(kept[n] == static_cast<Code>(logged.columns[0][n]));
+    CHECK(facts.sha256 == digest_of(bench.plan().signal.input, kept));
+    CHECK(files_in(bench.run_folder + "/stimuli") == 1);
+}
+
+TEST_CASE("stimulus: one that was not all sent is not kept", "[run]") {
+    RunBench bench;
+    SignalFile logged;
+    logged.path = "tare.csv";
+    logged.whole_numbers = true;
+    logged.columns = {std::vector<double>(5000, 100.0)};
+    bench.add_case("cut", "file", values({{"file", std::make_shared<const SignalFile>(logged)}}));
+    bench.model.instead = [&](std::uint8_t type, const Bytes&, Bytes&) {
+        return type == 0x10 && bench.model.processed_blocks >= 3;
+    };
+    REQUIRE(bench.go());
+    CHECK(bench.run.cases[0].verdict == CaseVerdict::invalid);
+    CHECK(bench.run.cases[0].stimulus.sha256.empty());
+    CHECK(bench.run.cases[0].stimulus.file.empty());
+    CHECK(files_in(bench.run_folder + "/stimuli") == 0);
 }

@@ -26,6 +26,16 @@ TEST_CASE("impulse: one sample, wherever the span begins", "[stimuli]") {
     }
 }
 
+TEST_CASE("silence: the zero of the format and nothing else", "[stimuli]") {
+    const auto silence = made("silence", {{"length_samples", std::int64_t{3}}});
+    CHECK(silence->length_samples() == 3);
+    CHECK(codes_of(*silence, "u12", -1, 5) == std::vector<Code>(5, 2048));
+    CHECK(codes_of(*silence, "f32", 0, 3) == std::vector<Code>(3, 0));
+    CHECK(silence->spectrum().bands.empty());
+    CHECK(refusal("silence", {{"length_samples", std::int64_t{3}}, {"level_ratio", 0.5}}) ==
+          "level_ratio: \"silence\" has no such parameter\n  Parameters: length_samples, add.");
+}
+
 TEST_CASE("step: without a level it is half of full scale", "[stimuli]") {
     CHECK(ratios_of(*made("step", {{"length_samples", std::int64_t{1}}}), 0, 1)[0] == 0.5);
 }

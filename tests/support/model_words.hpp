@@ -1,4 +1,4 @@
-// How docs/wire.md 2.2 lays a sample out in bytes, for the model board: written from that page alone, byte by
+// How docs/wire.md 2.4 lays a sample out in bytes, for the model board: written from that page alone, byte by
 // byte, so that it shares nothing with stimuli/sample_format.
 #pragma once
 

@@ -127,7 +127,7 @@ TEST_CASE("each: 12 levels, 3 rates and 2 channels are 72 cases with readable na
         "[case.each]\n"
         "\"stimulus.level_ratio\" = [0.01, 0.02, 0.05, 0.1, 0.2, 0.3, 0.4, 0.5, 0.7, 0.8, 0.9, 1.0]\n"
         "rate_hz = [600.0, 1200.0, 2400.0]\n"
-        "channel = [1, 2]\n";
+        "\"stimulus.channel\" = [1, 2]\n";
     CHECK(SourceText("plan.toml", text).line_count() < 25);
     const Expanded expanded(text);
     REQUIRE(expanded.cases.size() == 72);
@@ -140,10 +140,16 @@ TEST_CASE("each: 12 levels, 3 rates and 2 channels are 72 cases with readable na
     CHECK(last.find("each") == nullptr);
     CHECK(last.find("stimulus")->value.find("level_ratio")->value.real == 1.0);
     CHECK(last.find("rate_hz")->value.real == 2400.0);
-    CHECK(last.find("channel")->value.integer == 2);
+    CHECK(last.find("stimulus")->value.find("channel")->value.integer == 2);
     // The place of a value is that in the list, so that every message points there.
     CHECK(last.find("rate_hz")->value.place == Place{21, 27});
     CHECK(last.find("rate_hz")->key_place == Place{21, 1});
+    const Plan plan = plan_of(text);
+    REQUIRE(plan.cases.size() == 72);
+    CHECK(plan.cases[71].name == name(71));
+    CHECK(plan.cases[71].rate_hz == 2400.0);
+    CHECK(plan.cases[71].channel == 2);
+    CHECK(plan.cases[0].rate_hz == 600.0);
 }
 
 TEST_CASE("each: settings, whole lists and truth values vary too", "[config]") {
@@ -265,7 +271,7 @@ TEST_CASE("each: 10,000 cases are taken, more are refused before anything is exp
         for (int i = 0; i < count; ++i) text += (i > 0 ? ", " : "") + std::to_string(i + 1);
         return text + "]\n";
     };
-        CHECK(plan_of(signal_and_filter + at + levels(100)).cases.size() == 10000);
+    CHECK(plan_of(signal_and_filter + at + levels(100)).cases.size() == 10000);
     // The whole plan counts: a case more, below.
     CHECK(plan_problems(signal_and_filter + at + levels(100) +
                         "[[case]]\nname = \"one more\"\nstimulus = { shape = \"step\", length_samples = 5 }\n") ==

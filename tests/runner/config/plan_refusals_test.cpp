@@ -205,7 +205,7 @@ TEST_CASE("plan: a word that is not among the choices", "[config]") {
             "did you mean \"step\"?");
     refused("kind = \"fir\"", "kind = \"fri\"", 11, "\"fri\"", "kind = \"fri\" is not known", "did you mean \"fir\"?");
     refused("kind = \"fir\"", "kind = \"wavelet\"", 11, "\"wavelet\"", "kind = \"wavelet\" is not known",
-            "give " + listed(names_of(filter_kinds(), "\""), " or "));
+            "give " + listed(names_of(filter_recipes(), "\""), " or "));
     refused("input = \"q15\"", "input = \"q51\"", 5, "\"q51\"", "input = \"q51\" is not known",
             "did you mean \"q15\"?");
     refused("name = \"tare step\"", "name = \"tare step\"\nstart = \"warm\"", 30, "\"warm\"",
@@ -218,7 +218,7 @@ TEST_CASE("plan: a missing key is told at its header", "[config]") {
     refused("name = \"tare step\"\n", "", 28, "[[case]]", "[[case]] has no name",
             "add name: What --case and the report call it; each case has its own.");
     refused("kind = \"fir\"\n", "", 10, "[[filter]]", "[[filter]] has no kind",
-            "add kind = one of: " + listed(names_of(filter_kinds()), " or "));
+            "add kind = one of: " + listed(names_of(filter_recipes()), " or "));
     refused("shape = \"step\"\n", "", 30, "[case.stimulus]", "[case.stimulus] has no shape",
             "add shape = one of: " + listed(names_of(stimulus_recipes()), " or "));
     refused("[case.stimulus]\nshape = \"step\"\nlength_samples = 256\n", "", 28, "[[case]]",

@@ -92,6 +92,20 @@ TEST_CASE("plan: a layout that the format has no room for is told at its key", "
             "input_byte_order = \"pdp\" is not known", "give \"little\" or \"big\"");
 }
 
+TEST_CASE("plan: [arithmetic] is the default of every stage, [filter.arithmetic] goes over it", "[config]") {
+    const std::string text =
+        with(good_plan, std::string("[[filter]]\n") + fir,
+             "[arithmetic]\ncoefficient_fraction_bits = 15\naccumulator_bits = 32\n"
+             "[[filter]]\n" +
+                 std::string(fir) + "[[filter]]\n" + fir + "[filter.arithmetic]\ncoefficient_fraction_bits = 10\n");
+    const Plan plan = plan_of(text);
+    REQUIRE(plan.filter.size() == 2);
+    CHECK(plan.filter[0].arithmetic.coefficient_fraction_bits == 15);
+    CHECK(plan.filter[0].arithmetic.accumulator_bits == 32);
+    CHECK(plan.filter[1].arithmetic.coefficient_fraction_bits == 10);
+    CHECK(plan.filter[1].arithmetic.accumulator_bits == 32);
+}
+
 TEST_CASE("plan: words of the arithmetic are as strict as any", "[config]") {
     std::string text = with(good_plan, fir, std::string(fir) + "[filter.arithmetic]\naccumulator_bits = 7\n");
     CHECK(plan_problems(text) ==

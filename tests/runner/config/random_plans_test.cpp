@@ -1,0 +1,291 @@
+// A thousand random plans: as they are they are read, printed and read again to the same plan; with one word
+// spoiled they are refused at that line.
+#include "tests/support/random_plans.hpp"
+
+#include <catch2/catch.hpp>
+
+#include "runner/config/resolved_plan.hpp"
+#include "tests/support/config_texts.hpp"
+
+using namespace halflsb;
+using namespace halflsb::random_plans;
+
+namespace {
+
+constexpr std::uint32_t seed = 20261202;
+constexpr int rounds = 1000;
+
+std::string resolved(const std::string& text, FakeFiles files) {
+    files.contents["plan.toml"] = text;
+    auto printed = resolved_plan("plan.toml", files);
+    if (const auto* problems = std::get_if<ReadProblems>(&printed)) FAIL(text << "\n" << joined(*problems));
+    return std::get<std::string>(std::move(printed));
+}
+
+bool same(const std::optional<Limit>& a, const std::optional<Limit>& b) { return a == b; }
+
+void check_same(const Rule& a, const Rule& b) {
+    REQUIRE(a.kind.index() == b.kind.index());
+    if (const auto* error = std::get_if<ErrorRule>(&a.kind)) {
+        const auto& other = std::get<ErrorRule>(b.kind);
+        CHECK((same(error->largest, other.largest) && same(error->rms, other.rms) && same(error->bias, other.bias)));
+        CHECK(error->min_snr_db == other.min_snr_db);
+    } else if (const auto* latency = std::get_if<LatencyRule>(&a.kind)) {
+        const auto& other = std::get<LatencyRule>(b.kind);
+        CHECK(latency->expected_samples == other.expected_samples);
+        CHECK(latency->implicit == other.implicit);
+    } else if (const auto* response = std::get_if<ResponseRule>(&a.kind)) {
+        const auto& other = std::get<ResponseRule>(b.kind);
+        CHECK(response->relative_to_design == other.relative_to_design);
+        REQUIRE(response->bands.size() == other.bands.size());
+        for (std::size_t i = 0; i < other.bands.size(); ++i) {
+            CHECK(response->bands[i].from_hz == other.bands[i].from_hz);
+            CHECK(response->bands[i].to_hz == other.bands[i].to_hz);
+            CHECK(response->bands[i].min_db == other.bands[i].min_db);
+            CHECK(response->bands[i].max_db == other.bands[i].max_db);
+        }
+    } else if (const auto* unchanged = std::get_if<UnchangedRule>(&a.kind)) {
+        const auto& other = std::get<UnchangedRule>(b.kind);
+        CHECK(unchanged->baseline == other.baseline);
+        CHECK(same(unchanged->largest, other.largest));
+    }
+}
+
+std::vector<Code> first_codes(const Plan& plan, const Case& the_case) {
+    std::vector<Code> codes(1000 * static_cast<std::size_t>(plan.signal.channels));
+    fill_case_codes(plan, the_case, 0, codes);
+    return codes;
+}
+
+void check_same(const Plan& a, const Plan& b) {
+    CHECK(a.title == b.title);
+    CHECK(a.signal.rate_hz == b.signal.rate_hz);
+    CHECK(a.signal.input == b.signal.input);
+    CHECK(a.signal.output == b.signal.output);
+    CHECK(a.signal.quantise == b.signal.quantise);
+    CHECK(a.signal.full_scale_unit == b.signal.full_scale_unit);
+    CHECK(a.filter_is_unknown == b.filter_is_unknown);
+    REQUIRE(a.cases.size() == b.cases.size());
+    for (std::size_t i = 0; i < a.cases.size(); ++i) {
+        const Case &one = a.cases[i], &other = b.cases[i];
+        INFO(one.name);
+        CHECK(one.name == other.name);
+        CHECK(one.labels == other.labels);
+        CHECK(one.start == other.start);
+        CHECK(one.start_samples == other.start_samples);
+        CHECK(one.channel == other.channel);
+        CHECK(one.rate_hz == other.rate_hz);
+        REQUIRE(one.settings.size() == other.settings.size());
+        for (std::size_t s = 0; s < one.settings.size(); ++s) {
+            CHECK(one.settings[s].name == other.settings[s].name);
+            CHECK(one.settings[s].value == other.settings[s].value);
+        }
+        CHECK(one.stimulus->length_samples() == other.stimulus->length_samples());
+        CHECK(first_codes(a, one) == first_codes(b, other));
+        REQUIRE(one.rules.size() == other.rules.size());
+        for (std::size_t r = 0; r < one.rules.size(); ++r) check_same(one.rules[r], other.rules[r]);
+        for (int channel = 1; channel <= a.signal.channels; ++channel) {
+            const FilterChain chain = chain_of(a, one, channel), other_chain = chain_of(b, other, channel);
+            for (const double frequency : {0.0, 0.01, 0.13, 0.37, 0.5})
+                CHECK(response_at(chain, frequency) == response_at(other_chain, frequency));
+        }
+    }
+}
+
+/// Line of the first problem, which must be in the plan itself; 0 when there is none.
+int first_line(const std::string& text, FakeFiles files, std::string& told) {
+    files.contents["plan.toml"] = text;
+    const auto read = read_plan("plan.toml", files);
+    const auto* problems = std::get_if<ReadProblems>(&read);
+    if (problems == nullptr) return 0;
+    told = joined(*problems);
+    const std::string& first = problems->texts.front();
+    return first.starts_with("plan.toml:") ? std::stoi(first.substr(10)) : -1;
+}
+
+enum class Spoiled { unknown, misspelt, type, range, nan, repeated, missing, misplaced, choice };
+constexpr int spoiled_kinds = 9;
+
+struct Mutant {
+    RandomPlan plan;
+    int line = 0;
+};
+
+/// What may be spoiled in this way: tables and keys of the plan.
+std::vector<std::pair<std::size_t, std::size_t>> candidates(const RandomPlan& plan, Spoiled how) {
+    std::vector<std::pair<std::size_t, std::size_t>> found;
+    for (std::size_t t = 0; t < plan.tables.size(); ++t) {
+        for (std::size_t k = 0; k < plan.tables[t].keys.size(); ++k) {
+            const Key& key = plan.tables[t].keys[k];
+            const Parameter* parameter = key.parameter;
+            const bool has_recipe = plan.tables[t].recipe != nullptr;
+            const bool is_number = parameter != nullptr && (parameter->type == ParameterType::real ||
+                                                            parameter->type == ParameterType::integer);
+            const bool is_word = parameter == nullptr && key.is_required;  // shape, kind
+            bool fits = false;
+            switch (how) {
+                case Spoiled::unknown:
+                case Spoiled::misplaced:
+                    fits = has_recipe;
+                    break;
+                case Spoiled::misspelt:
+                    // Without these two an earlier line contradicts itself, and that is told first.
+                    fits = parameter != nullptr && !key.is_required && key.name != "output_per_input" &&
+                           key.name != "discard_samples";
+                    break;
+                case Spoiled::type:
+                    fits = parameter != nullptr || is_word;
+                    break;
+                case Spoiled::range:
+                    fits = is_number && (std::isfinite(parameter->minimum) || std::isfinite(parameter->maximum));
+                    break;
+                case Spoiled::nan:
+                    fits = is_number;
+                    break;
+                case Spoiled::repeated:
+                    fits = true;
+                    break;
+                case Spoiled::missing:
+                    fits = key.is_required && has_recipe;
+                    break;
+                case Spoiled::choice:
+                    fits = is_word || (parameter != nullptr && parameter->type == ParameterType::choice);
+                    break;
+            }
+            if (fits) found.push_back({t, k});
+        }
+    }
+    return found;
+}
+
+/// A word of another table that this one does not know.
+std::string word_of_another_table(Generator& random, const Table& table) {
+    std::vector<const Recipe*> recipes{&signal_recipe(), &case_recipe()};
+    for (const auto* list : {&stimulus_recipes(), &rule_recipes(), &filter_kinds()}) {
+        for (const Recipe& recipe : *list) recipes.push_back(&recipe);
+    }
+    for (;;) {
+        const Recipe& recipe = *recipes[random.below(recipes.size())];
+        if (recipe.parameters.empty()) continue;
+        const Parameter& parameter = recipe.parameters[random.below(recipe.parameters.size())];
+        const bool is_known =
+            find_parameter(*table.recipe, parameter.name) != nullptr ||
+            (table.header == "[case.stimulus]" && find_parameter(case_stimulus_recipe(), parameter.name) != nullptr) ||
+            (table.header == "[[filter]]" && parameter.name == "channels");
+        if (!is_known) return std::string(parameter.name);
+    }
+}
+
+std::optional<Mutant> mutant(Generator& random, const RandomPlan& plan, Spoiled how) {
+    const auto places = candidates(plan, how);
+    if (places.empty()) return std::nullopt;
+    const auto [t, k] = places[random.below(places.size())];
+    Mutant made{plan, plan.line_of(t, k)};
+    Table& table = made.plan.tables[t];
+    Key& key = table.keys[k];
+    const auto insert = [&](Key added) {
+        table.keys.insert(table.keys.begin() + static_cast<std::ptrdiff_t>(k) + 1, std::move(added));
+        ++made.line;
+    };
+    switch (how) {
+        case Spoiled::unknown:
+            insert({"zz_17", "1"});
+            break;
+        case Spoiled::misspelt:
+            key.name.insert(key.name.size() / 2, "q");
+            break;
+        case Spoiled::type:
+            key.value = key.value.front() == '"' ? "5" : "\"five\"";
+            break;
+        case Spoiled::range: {
+            const bool below = std::isfinite(key.parameter->minimum);
+            const double beyond = below ? key.parameter->minimum - 1.0 : key.parameter->maximum + 1.0;
+            key.value = number_text(beyond);
+            break;
+        }
+        case Spoiled::nan:
+            key.value = "nan";
+            break;
+        case Spoiled::repeated:
+            insert(Key(key));
+            break;
+        case Spoiled::missing:
+            made.line = plan.line_of(t, std::string::npos);
+            table.keys.erase(table.keys.begin() + static_cast<std::ptrdiff_t>(k));
+            break;
+        case Spoiled::misplaced:
+            insert({word_of_another_table(random, table), "1"});
+            break;
+        case Spoiled::choice:
+            key.value = "\"zz-none\"";
+            break;
+    }
+    return made;
+}
+
+}  // namespace
+
+TEST_CASE("random plans: read, printed and read again they are the same", "[config]") {
+    Generator random(seed);
+    std::set<std::string> words;
+    std::size_t most_cases = 0;
+    for (int round = 0; round < rounds; ++round) {
+        const RandomPlan plan = random.plan();
+        const std::string text = plan.text();
+        INFO("seed " << seed << ", round " << round << "\n" << text);
+        const std::string printed = resolved(text, plan.files);
+        INFO(printed);
+        REQUIRE(resolved(printed, plan.files) == printed);
+        const Plan read = plan_of(text, plan.files);
+        check_same(read, plan_of(printed, plan.files));
+        most_cases = std::max(most_cases, read.cases.size());
+        for (const Table& table : plan.tables) {
+            words.insert(table.header);
+            for (const Key& key : table.keys)
+                words.insert(table.recipe == nullptr ? key.name : std::string(table.recipe->name) + " " + key.name);
+        }
+    }
+    CHECK(most_cases >= 8);
+    // Every word of the tables stands in some plan; what never does is refused always, or never tried.
+    std::string unused;
+    std::size_t known = 0, missing = 0;
+    const auto look = [&](const Recipe& recipe) {
+        for (const Parameter& parameter : recipe.parameters) {
+            ++known;
+            if (words.count(std::string(recipe.name) + " " + std::string(parameter.name)) > 0) continue;
+            ++missing;
+            unused += std::string(recipe.name) + " " + std::string(parameter.name) + "\n";
+        }
+    };
+    for (const auto* list : {&stimulus_recipes(), &filter_kinds(), &rule_recipes()}) {
+        for (const Recipe& recipe : *list) look(recipe);
+    }
+    for (const Recipe* recipe : {&plan_recipe(), &signal_recipe(), &arithmetic_recipe(), &case_recipe()}) look(*recipe);
+    INFO("words that no plan has:\n" << unused);
+    CHECK(missing * 20 <= known);
+    for (const char* header : {"[case.each]", "[case.settings]", "[filter.arithmetic]", "[[rule]]"}) {
+        INFO(header);
+        CHECK(words.count(header) == 1);
+    }
+    CHECK(words.count("plan include") == 1);
+    CHECK(words.count("case labels") == 1);
+}
+
+TEST_CASE("random plans: with one word spoiled they are refused at its line", "[config]") {
+    Generator random(seed + 1);
+    std::array<int, spoiled_kinds> count{};
+    for (int round = 0; round < rounds; ++round) {
+        const RandomPlan plan = random.plan();
+        // A plan need not have what a kind spoils; then the next kind takes its turn.
+        std::optional<Mutant> made;
+        std::size_t kind = static_cast<std::size_t>(round) % spoiled_kinds;
+        while (!(made = mutant(random, plan, static_cast<Spoiled>(kind)))) kind = (kind + 1) % spoiled_kinds;
+        ++count[kind];
+        const std::string text = made->plan.text();
+        std::string told;
+        const int line = first_line(text, made->plan.files, told);
+        INFO("seed " << seed + 1 << ", round " << round << ", kind " << kind << "\n" << text << "\n" << told);
+        REQUIRE(line == made->line);
+    }
+    for (const int n : count) CHECK(n > rounds / spoiled_kinds / 2);
+}
