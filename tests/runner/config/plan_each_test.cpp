@@ -271,7 +271,7 @@ TEST_CASE("each: 10,000 cases are taken, more are refused before anything is exp
         for (int i = 0; i < count; ++i) text += (i > 0 ? ", " : "") + std::to_string(i + 1);
         return text + "]\n";
     };
-        CHECK(plan_of(signal_and_filter + at + levels(100)).cases.size() == 10000);
+    CHECK(plan_of(signal_and_filter + at + levels(100)).cases.size() == 10000);
     // The whole plan counts: a case more, below.
     CHECK(plan_problems(signal_and_filter + at + levels(100) +
                         "[[case]]\nname = \"one more\"\nstimulus = { shape = \"step\", length_samples = 5 }\n") ==
