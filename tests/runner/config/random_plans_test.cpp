@@ -179,7 +179,8 @@ std::string word_of_another_table(Generator& random, const Table& table) {
 std::optional<Mutant> mutant(Generator& random, const RandomPlan& plan, Spoiled how) {
     const auto places = candidates(plan, how);
     if (places.empty()) return std::nullopt;
-    const auto [t, k] = places[random.below(places.size())];
+    const auto place = places[random.below(places.size())];
+    const std::size_t t = place.first, k = place.second;
     Mutant made{plan, plan.line_of(t, k)};
     Table& table = made.plan.tables[t];
     Key& key = table.keys[k];
