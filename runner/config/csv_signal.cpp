@@ -193,15 +193,16 @@ private:
 
     void take_times() {
         if (!time_column_) return;
-        const auto times = ColumnTimes{columns_[*time_column_], time_resolution_s_, name_.rate_hz};
+        const auto at = static_cast<std::ptrdiff_t>(*time_column_);
+        const std::vector<double> times_s = std::move(columns_[*time_column_]);
+        columns_.erase(columns_.begin() + at);
+        names_.erase(names_.begin() + at);
+        const ColumnTimes times{times_s, time_resolution_s_, name_.rate_hz};
         const auto found = rate_of(times);
         if (!found.problem.empty()) {
             refuse({time_lines_[found.index], 1}, found.problem, found.remedy);
             return;
         }
-        const auto at = static_cast<std::ptrdiff_t>(*time_column_);
-        columns_.erase(columns_.begin() + at);
-        names_.erase(names_.begin() + at);
         if (!found.rate_hz) return;
         if (rate_hz_ && !fits(times, *rate_hz_)) {
             refuse({time_lines_.front(), 1},

@@ -95,6 +95,9 @@ TEST_CASE("signal file: times state the sample rate and are no data", "[config]"
     // Another rate is stated as it is, for the shape to refuse.
     CHECK(file_of(times, 1000.0).rate_hz == Approx(1200.0).epsilon(1e-6));
     CHECK(!file_of("time_s,raw\n0.5,1\n", 1200.0).rate_hz);
+    // Beside a comment that says the same.
+    CHECK(file_of("# rate_hz = 1200\n" + times, 1200.0).columns == Columns{{5.0, 6.0, 7.0, 8.0}});
+    CHECK(file_of("# rate_hz = 1200\n" + times).rate_hz == 1200.0);
 }
 
 TEST_CASE("signal file: a rate is held to 1e-6, from both sides", "[config]") {
