@@ -174,7 +174,7 @@ private:
         const TomlValue& stages = tree.entries[at].value;
         for (std::size_t i = 0; i < stages.items.size(); ++i) {
             const TomlValue& stage = stages.items[i];
-            if (const Recipe* recipe = recipe_of(stage, "kind", filter_kinds()))
+            if (const Recipe* recipe = recipe_of(stage, "kind", filter_recipes()))
                 gather(stage, *recipe, {at, i}, missing);
             // What [arithmetic] says holds for a stage that does not say it: no default takes its place.
             const TomlEntry* own = stage.find("arithmetic");

@@ -9,6 +9,7 @@
 
 namespace halflsb {
 
+/// Of many cases the text may be larger than what a plan file may be; then it is for people only.
 /// Files that the plan names stay named; they are taken from the same root. A default is written out where the
 /// table takes it beside what is given: not level_ratio, for example, where the plan gives level_codes.
 std::variant<std::string, ReadProblems> resolved_plan(const std::string& path, const Files& files,

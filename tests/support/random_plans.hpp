@@ -291,7 +291,7 @@ private:
         const std::size_t stages = 1 + below(2);
         for (std::size_t i = 0; i < stages && !is_unknown_; ++i) {
             for (int attempt = 0; attempt < 20; ++attempt) {
-                const Recipe& kind = filter_kinds()[below(filter_kinds().size())];
+                const Recipe& kind = filter_recipes()[below(filter_recipes().size())];
                 const bool unknown = kind.name == unknown_kind;
                 if (unknown && i > 0) continue;
                 Table table = chosen("[[filter]]", "kind", kind);

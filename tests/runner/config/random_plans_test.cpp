@@ -161,7 +161,7 @@ std::vector<std::pair<std::size_t, std::size_t>> candidates(const RandomPlan& pl
 /// A word of another table that this one does not know.
 std::string word_of_another_table(Generator& random, const Table& table) {
     std::vector<const Recipe*> recipes{&signal_recipe(), &case_recipe()};
-    for (const auto* list : {&stimulus_recipes(), &rule_recipes(), &filter_kinds()}) {
+    for (const auto* list : {&stimulus_recipes(), &rule_recipes(), &filter_recipes()}) {
         for (const Recipe& recipe : *list) recipes.push_back(&recipe);
     }
     for (;;) {
@@ -179,7 +179,8 @@ std::string word_of_another_table(Generator& random, const Table& table) {
 std::optional<Mutant> mutant(Generator& random, const RandomPlan& plan, Spoiled how) {
     const auto places = candidates(plan, how);
     if (places.empty()) return std::nullopt;
-    const auto [t, k] = places[random.below(places.size())];
+    const auto place = places[random.below(places.size())];
+    const std::size_t t = place.first, k = place.second;
     Mutant made{plan, plan.line_of(t, k)};
     Table& table = made.plan.tables[t];
     Key& key = table.keys[k];
@@ -257,7 +258,7 @@ TEST_CASE("random plans: read, printed and read again they are the same", "[conf
             unused += std::string(recipe.name) + " " + std::string(parameter.name) + "\n";
         }
     };
-    for (const auto* list : {&stimulus_recipes(), &filter_kinds(), &rule_recipes()}) {
+    for (const auto* list : {&stimulus_recipes(), &filter_recipes(), &rule_recipes()}) {
         for (const Recipe& recipe : *list) look(recipe);
     }
     for (const Recipe* recipe : {&plan_recipe(), &signal_recipe(), &arithmetic_recipe(), &case_recipe()}) look(*recipe);
