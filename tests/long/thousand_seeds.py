@@ -12,7 +12,7 @@ def main():
     rules = '[[rule]]\nkind = "error"\nmax_lsb = 0.5\nbias_lsb = 0.2\n[[rule]]\nkind = "latency"\nlatency_samples = 0\n'
     with bench() as at, virtual_board(at):
         record = passed_run(at, at.plan(cases, filter_text=moving_average(16), rules=rules), at.rig())
-    passed = [case for case in record["cases"] if case["verdict"] == "pass" and case["grade"] == "proven" and case["latency_told"]]
+    passed = [case for case in record["verdict"]["cases"] if case["verdict"] == "pass" and case["grade"] == "proven" and case["latency_told"]]
     captures = {case["capture"]["sha256"] for case in record["cases"]}
     figures.add("seeds that a healthy board passes", f"{SEEDS:,} of {SEEDS:,}",
                 f"{len(passed):,} of {len(record['cases']):,}, {SAMPLES:,} samples each, {len(captures):,} different captures",

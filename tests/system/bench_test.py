@@ -72,14 +72,14 @@ class Bench(Case):
         done = self.run_with("unplug=30", cases=NOISE + NOISE.replace('"noise"\n[', '"second"\n[') + STEP)
         self.expect_3(done, "1 pass", "1 invalid", "1 not run")
         record = self.record()
-        self.assertEqual([case["verdict"] for case in record["cases"]], ["pass", "invalid"])
+        self.assertEqual([case["verdict"] for case in record["verdict"]["cases"]], ["pass", "invalid"])
         self.assertTrue(record["finished"])
-        self.assertEqual(record["cases"][1]["rules"], [])
+        self.assertEqual(record["verdict"]["cases"][1]["rules"], [])
 
     def test_a_board_that_restarts_makes_its_case_invalid_and_the_next_ones_run(self):
         done = self.run_with("restart=10", cases=NOISE + STEP)
         self.expect_3(done, "1 pass", "1 invalid", "restart")
-        self.assertEqual([case["verdict"] for case in self.record()["cases"]], ["invalid", "pass"])
+        self.assertEqual([case["verdict"] for case in self.record()["verdict"]["cases"]], ["invalid", "pass"])
 
     def test_a_line_that_flips_drops_and_repeats_bytes_changes_no_sample(self):
         for fault in ("flip-byte=5000", "drop-byte=5003", "repeat-byte=4999", "flip-in=5000", "drop-in=5001"):
@@ -100,8 +100,9 @@ class Bench(Case):
     def test_a_line_too_bad_to_use_is_said_and_never_judged(self):
         done = self.run_with("flip-byte=100")
         self.expect_3(done)
-        for case in self.record()["cases"]:
+        for case in self.record()["verdict"]["cases"]:
             self.assertEqual((case["verdict"], case["rules"]), ("invalid", []))
+        for case in self.record()["cases"]:
             self.assertIsNone(case["stream"]["bad_frames_at_board"], "a board that was not asked has no counters")
 
     def test_another_build_id_than_the_image(self):

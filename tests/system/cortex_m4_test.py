@@ -20,13 +20,13 @@ class CortexM4(Case):
         return done, record
 
     def failed_rules(self, record):
-        return {rule["kind"] for case in record["cases"] for rule in case["rules"] if rule["verdict"] == "fail"}
+        return {rule["kind"] for case in record["verdict"]["cases"] for rule in case["rules"] if rule["verdict"] == "fail"}
 
     def test_the_released_firmware_passes_and_is_verified(self):
         done, record = self.accept("halflsb-cw7.elf")
         self.assert_status(done, 0)
         self.assertTrue(record["firmware"]["verified"])
-        self.assertEqual(record["counts"]["pass"], 3)
+        self.assertEqual(record["verdict"]["counts"]["pass"], 3)
         self.assertNotIn("not verified", done.out)
 
     def test_each_defective_build_is_refused(self):

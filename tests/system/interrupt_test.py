@@ -33,7 +33,7 @@ class Interrupt(Case):
                 took_s, text = self.interrupted(number, self.after_the_first_case)
                 self.assertLess(took_s, 1.0 + 1.0, "a second, and one of grace for a loaded machine")
                 record = self.record()
-                self.assertEqual([(case["name"], case["verdict"]) for case in record["cases"]], [("step", "pass")])
+                self.assertEqual([(case["name"], case["verdict"]) for case in record["verdict"]["cases"]], [("step", "pass")])
                 self.assertEqual(record["ended_by"]["kind"], "interrupted")
                 self.assertIn("1 not run", text)
                 # The interrupted case leaves no half file behind.

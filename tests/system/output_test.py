@@ -53,7 +53,7 @@ exit $status
         self.assertIn("no space", done.stderr)
         record = self.record("kept")
         self.assertEqual([case["name"] for case in record["cases"]], ["step"])
-        self.assertEqual(record["cases"][0]["verdict"], "pass")
+        self.assertEqual(record["verdict"]["cases"][0]["verdict"], "pass")
         self.assertTrue((self.folder / "kept" / record["cases"][0]["capture"]["file"]).is_file())
 
     def test_standard_output_on_a_full_disk_is_not_a_pass(self):

@@ -10,7 +10,7 @@ class Verdicts(Case):
         return done, self.record()
 
     def verdicts(self, record, case=0):
-        return {rule["kind"]: rule["verdict"] for rule in record["cases"][case]["rules"]}
+        return {rule["kind"]: rule["verdict"] for rule in record["verdict"]["cases"][case]["rules"]}
 
     def test_a_healthy_board_passes_and_the_record_is_whole(self):
         done, record = self.run_with(cases=NOISE + STEP)
@@ -19,7 +19,7 @@ class Verdicts(Case):
         self.assertIn("2 pass, 0 fail, 0 invalid, 0 undecided, 0 not run", done.out)
         self.assertIn("firmware not verified", done.out)
         self.assertTrue(record["finished"])
-        self.assertEqual([case["grade"] for case in record["cases"]], ["proven", "proven"])
+        self.assertEqual([case["grade"] for case in record["verdict"]["cases"]], ["proven", "proven"])
         self.assertEqual(record["cases"][0]["stream"]["received_samples"], 6000)
         self.assertTrue((self.folder / "run" / record["cases"][0]["capture"]["file"]).is_file(), record["cases"][0])
 
@@ -61,7 +61,7 @@ class Verdicts(Case):
             with self.subTest(fault):
                 done, record = self.run_with("--fault", fault, cases=NOISE + NOISE.replace('"noise"\n[', '"again"\n['))
                 self.assert_status(done, 1)
-                self.assertEqual([case["verdict"] for case in record["cases"]], ["pass", "fail"])
+                self.assertEqual([case["verdict"] for case in record["verdict"]["cases"]], ["pass", "fail"])
                 self.cleanup_run()
 
     def test_a_response_rule_sees_a_wider_window(self):

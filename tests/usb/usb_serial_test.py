@@ -123,7 +123,7 @@ class UsbSerial(unittest.TestCase):
             with self.subTest(baud=baud):
                 told = self.told_the_adapter(lambda: self.check("acceptance", f"any-{baud}", 0))
                 record = self.record()
-                self.assertEqual([case["verdict"] for case in record["cases"]], ["pass"] * 3)
+                self.assertEqual([case["verdict"] for case in record["verdict"]["cases"]], ["pass"] * 3)
                 self.assertIn("/dev/ttyUSB0", json.dumps(record["board"]))
                 rates = re.findall(r"baud(?: rate)? (\d+)", told)
                 self.assertTrue(rates, told)
@@ -209,7 +209,7 @@ class UsbSerial(unittest.TestCase):
             board.process.send_signal(signal.SIGCONT)
         first = machine.wait(number, CHECK_S)
         self.assertEqual(first.status, 0, repr(first))
-        self.assertEqual([case["verdict"] for case in self.record(first_out)["cases"]], ["pass", "pass"])
+        self.assertEqual([case["verdict"] for case in self.record(first_out)["verdict"]["cases"]], ["pass", "pass"])
         self.assertGreater(board.bridge.to_board_bytes, sent)
         # The claim has gone with the one that made it, also for who is not root.
         after = machine.run(f"su operator -c '{self.check_script('two', 'any-921600')}'", CHECK_S)
@@ -237,7 +237,7 @@ class UsbSerial(unittest.TestCase):
         self.assertLess(took_s, ANSWER_S / 2, "it took the unplug for a silent board")
         self.assertIn("the port is gone: it was unplugged", done.text)
         record = self.record()
-        self.assertEqual([(case["name"], case["verdict"]) for case in record["cases"]], [("step", "pass"), ("long", "invalid")])
+        self.assertEqual([(case["name"], case["verdict"]) for case in record["verdict"]["cases"]], [("step", "pass"), ("long", "invalid")])
         self.assertIn("unplugged", json.dumps(record["cases"][1]))
         kept = machine.run(f"ls {self.out}/captures").out.split()
         self.assertEqual(len(kept), 2, "the capture of the finished case, and what came of the other")
@@ -315,7 +315,7 @@ class UsbSerial(unittest.TestCase):
         self.assertEqual(done.status, 130, repr(done))
         # Closing a port waits up to 30 s for bytes that have not left.
         self.assertLess(done.ended_at - sent_at, 15.0)
-        self.assertEqual([case["verdict"] for case in self.record()["cases"]], ["pass"])
+        self.assertEqual([case["verdict"] for case in self.record()["verdict"]["cases"]], ["pass"])
         self.check("two", "any-921600", 0)
 
 

@@ -224,7 +224,6 @@ TEST_CASE("options: the parser knows exactly the options of the table, per comma
             const bool needs_rig = command.command == Command::check && option.name != "--rig";
             if (needs_rig) words = with(words, {"--rig", "r"});
             words.emplace_back(option.name);
-            if (option.name == "--list") words = {"check", "p", "--list"};
             if (!option.argument.empty()) words.push_back(option.name == "--color" ? "auto" : "1");
             const bool known =
                 std::find(option.commands.begin(), option.commands.end(), command.command) != option.commands.end();
