@@ -75,6 +75,33 @@ class Judge(Case):
         (self.folder / "run" / "plan-files" / "taps.txt").write_text("1.0\n")
         self.refused("plan-files/taps.txt", "it was edited")
 
+    def test_channels_start_states_settings_and_baselines_are_judged_alike(self):
+        quiet = NOISE.replace("0.9", "0.5")
+        each = STEP.replace('"step"\n[', '"one side"\n[').replace("level_ratio = 0.5\n", "") + 'channel = 2\n[case.each]\n"stimulus.level_ratio" = [0.25, 0.5]\n'
+        pair = dict(cases=quiet + each, signal="channels = 2", board_filter="pair", rules=ERROR + '[[rule]]\nkind = "unchanged"\nbaseline = "b"\n')
+        settings = dict(cases=quiet.replace("[case.stim", "settings = { average-points = 8 }\n[case.stim") + STEP.replace("[case.stim", 'start = "flush"\n[case.stim'),
+                        board_filter="average", filter_text=None)
+        for more, status in ((pair, 2), (settings, 1)):
+            with self.subTest(more["board_filter"]):
+                checked = self.captured(status=status, **more)
+                written = (self.folder / "run" / "run.json").read_text()
+                judged = self.judge()
+                self.assert_status(judged, status)
+                # Behind the lines on the board, the cases' reports and the summary.
+                self.assertEqual(judged.out[judged.out.index("\n1/"):], checked.out[checked.out.index("\n1/"):])
+                document = self.judge("--json")
+                self.assertEqual(json.loads(document.out)["runs"], [json.loads(written)])
+                self.assertEqual(verdict_of(document.out), verdict_of(written))
+                if status == 2:
+                    accepted = halflsb("accept", self.folder / "run", cwd=self.folder)
+                    self.assert_status(accepted, 0)
+                    support.shutil.rmtree(self.folder / "run")
+                    self.captured(status=0, **more)
+                    # The baseline is among the files of the run: judging does not need the repository.
+                    support.shutil.rmtree(self.folder / "b")
+                    self.assert_status(self.judge(), 0)
+                support.shutil.rmtree(self.folder / "run")
+
     def test_by_another_plan_it_is_a_new_verdict(self):
         self.captured(faults=("A01",), status=1)
         wide = self.plan(NOISE + STEP, rules=ERROR.replace("0.5", "1.0"), name="wide.toml")
