@@ -4,6 +4,7 @@
 
 #include "runner/commands.hpp"
 #include "runner/config/plan_file.hpp"
+#include "runner/config/resolved_plan.hpp"
 #include "runner/config/rig_file.hpp"
 #include "runner/paper.hpp"
 #include "runner/report/people.hpp"
@@ -77,10 +78,24 @@ std::string prediction_text(const Prediction& prediction, const std::optional<Ri
     return text + cases_text(prediction, rig, style);
 }
 
+/// The whole plan, whatever --case selects: it is a file to read and to keep.
+int print_resolved(const Options& options, const Desk& desk) {
+    if (options.json) {
+        return tell({ErrorKind::usage, "--resolved", "the plan is TOML, and --json wants a JSON document",
+                     "leave one of the two out"},
+                    options, desk);
+    }
+    const auto text = resolved_plan(options.plan, desk.files, {options.root.value_or(""), options.seed});
+    if (const auto* wrong = std::get_if<ReadProblems>(&text)) return tell_problems(wrong->texts, desk);
+    const auto written = desk.terminal.write(Stream::out, std::get<std::string>(text));
+    return written ? 0 : tell(written.error(), options, desk);
+}
+
 }  // namespace
 
 int predict_command(const Options& options, const Desk& desk) {
-    auto plan = read_plan(options.plan, desk.files, {options.root.value_or(""), std::nullopt});
+    if (options.resolved) return print_resolved(options, desk);
+    auto plan = read_plan(options.plan, desk.files, {options.root.value_or(""), options.seed});
     std::optional<Rig> rig;
     std::vector<std::string> problems;
     if (auto* wrong = std::get_if<ReadProblems>(&plan)) problems = std::move(wrong->texts);

@@ -40,6 +40,19 @@ const std::vector<SampleFormat>& sample_formats() {
     return formats;
 }
 
+ValueKind value_kind(const SampleFormat& format) {
+    switch (format.family) {
+        case FormatFamily::q:
+            return ValueKind::fraction;
+        case FormatFamily::i:
+        case FormatFamily::u:
+            return ValueKind::codes;
+        case FormatFamily::f:
+            break;
+    }
+    return ValueKind::number;
+}
+
 std::optional<SampleFormat> sample_format(std::string_view name) {
     for (const SampleFormat& format : sample_formats()) {
         if (format.name == name) return format;

@@ -53,6 +53,11 @@ struct SampleFormat {
     }
 };
 
+/// In what a value is counted: a q format in full scales, i and u formats in LSB, a float in whatever the
+/// firmware chose.
+enum class ValueKind { fraction, codes, number };
+ValueKind value_kind(const SampleFormat& format);
+
 const std::vector<SampleFormat>& sample_formats();
 std::optional<SampleFormat> sample_format(std::string_view name);
 /// "u12, left-justified, big-endian"; the defaults are not said.

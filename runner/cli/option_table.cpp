@@ -49,6 +49,11 @@ std::string take_list(Options& options, const std::string&) {
     return "";
 }
 
+std::string take_resolved(Options& options, const std::string&) {
+    options.resolved = true;
+    return "";
+}
+
 std::string take_json(Options& options, const std::string&) {
     options.json = true;
     return "";
@@ -163,12 +168,22 @@ const std::vector<OptionSpec>& option_table() {
          "",
          {},
          take_list},
+        {"--resolved",
+         "",
+         "",
+         "",
+         "Prints the plan as it is understood: what it includes joined, every case of [case.each], every default",
+         {predict},
+         {},
+         "",
+         {},
+         take_resolved},
         {"--seed",
          "",
          "N",
          "the plan's",
          "The seed of every random stimulus in place of the plan's",
-         {check},
+         {check, predict},
          {},
          "",
          {},

@@ -34,6 +34,7 @@ struct Options {
     std::vector<std::string> case_patterns;
     std::vector<std::string> labels;
     bool list = false;
+    bool resolved = false;
     bool json = false;
     std::optional<std::int64_t> kept_samples;  ///< of --samples
     std::optional<std::uint64_t> seed;

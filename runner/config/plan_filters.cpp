@@ -108,6 +108,7 @@ private:
         auto made = make_stage(recipe->name, stage.values,
                                {signal_ == nullptr ? 1.0 : signal_->rate_hz, stage.arithmetic,
                                 signal_ == nullptr ? most_channels : signal_->channels});
+        if (made) made = checked_words(std::move(*made));
         if (made) {
             read_.chain.push_back(std::move(*made));
             read_.stages.push_back(std::move(stage));
@@ -115,6 +116,21 @@ private:
             refuse_stage(reader, *recipe, stage.values, own, *common_, made.error());
         }
     }
+
+    /// Words between the stages that count in another kind of value would clip or lose everything.
+    Outcome<FilterStage> checked_words(FilterStage stage) const {
+        const auto& words = stage.arithmetic.stage_format;
+        if (!words || signal_ == nullptr || signal_->output_per_input != 1.0) return stage;
+        const ValueKind between = value_kind(*words), around = value_kind(signal_->input);
+        if (between == around || between == ValueKind::number || around == ValueKind::number) return stage;
+        return Error{
+            ErrorKind::input, "stage_format",
+            std::string(words->name) + " counts in " + unit_of(between) + ", the signal's " +
+                std::string(signal_->input.name) + " in " + unit_of(around) +
+                ", so the stage would clip or lose its samples",
+            std::string("give a format of ") + (around == ValueKind::codes ? "the i or u" : "the q") + " family"};
+    }
+    static const char* unit_of(ValueKind kind) { return kind == ValueKind::codes ? "LSB" : "fractions of full scale"; }
 
     ReadContext& context_;
     TableReader& top_;

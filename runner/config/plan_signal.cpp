@@ -14,22 +14,6 @@ void refuse_zero(TableReader& reader, const Recipe& recipe, const ParameterValue
     }
 }
 
-/// In what a value is counted: a q format in full scales, i and u formats in LSB, a float in whatever the
-/// firmware chose.
-enum class ValueKind { fraction, codes, number };
-ValueKind value_kind(const SampleFormat& format) {
-    switch (format.family) {
-        case FormatFamily::q:
-            return ValueKind::fraction;
-        case FormatFamily::i:
-        case FormatFamily::u:
-            return ValueKind::codes;
-        case FormatFamily::f:
-            break;
-    }
-    return ValueKind::number;
-}
-
 /// Between kinds of value the plan must say how values go from one to the other; within one a value is a value.
 void check_kinds(TableReader& reader, const Signal& signal) {
     const bool given = reader.entry("output_per_input") != nullptr;  // be it wrong: that was told

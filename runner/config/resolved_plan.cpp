@@ -31,7 +31,8 @@ std::optional<TomlValue> default_of(const Parameter& parameter) {
     } else if (parameter.default_value) {
         value.kind = TomlValue::Kind::real;
         value.real = *parameter.default_value;
-    } else if (parameter.type == ParameterType::choice && !parameter.required && !parameter.choices.empty()) {
+    } else if (parameter.type == ParameterType::choice && !parameter.required && !parameter.optional_choice &&
+               !parameter.choices.empty()) {
         value.kind = TomlValue::Kind::text;
         value.text = parameter.choices.front();
     } else {

@@ -106,6 +106,20 @@ TEST_CASE("plan: [arithmetic] is the default of every stage, [filter.arithmetic]
     CHECK(plan.filter[1].arithmetic.accumulator_bits == 32);
 }
 
+TEST_CASE("plan: words between stages count in the signal's kind of value", "[config]") {
+    const auto plan_with = [](const std::string& word) {
+        return with(good_plan, fir, std::string(fir) + "[filter.arithmetic]\nstage_format = \"" + word + "\"\n");
+    };
+    CHECK(plan_problems(plan_with("q31")).empty());
+    CHECK(plan_problems(plan_with("f32")).empty());
+    CHECK(
+        plan_problems(plan_with("i32")) ==
+        message(plan_with("i32"), 14, "\"i32\"",
+                "stage_format: i32 counts in LSB, the signal's q15 in fractions of full scale, so the stage would clip "
+                "or lose its samples",
+                "give a format of the q family"));
+}
+
 TEST_CASE("plan: words of the arithmetic are as strict as any", "[config]") {
     std::string text = with(good_plan, fir, std::string(fir) + "[filter.arithmetic]\naccumulator_bits = 7\n");
     CHECK(plan_problems(text) ==
