@@ -33,7 +33,4 @@ struct BaselineContent {
 
 std::string baseline_toml(const BaselineContent& content);
 
-/// `text` as a basic string of TOML, quotes included; bytes that are no UTF-8 become U+FFFD.
-std::string toml_quoted(const std::string& text);
-
 }  // namespace halflsb
