@@ -5,6 +5,7 @@
 #include "runner/config/baseline_file.hpp"
 #include "runner/world/printable.hpp"
 #include "runner/world/sha256.hpp"
+#include "runner/world/stimulus_sha256.hpp"
 #include "stimuli/npy.hpp"
 
 namespace halflsb {
@@ -13,24 +14,8 @@ namespace {
 
 constexpr std::string_view damaged_remedy = "take the baseline as it was committed, or accept a good run anew";
 constexpr std::string_view accept_remedy = "accept a good run with halflsb accept RUN";
-constexpr std::size_t hashed_at_once = 65'536;
 
 std::string shown_folder(const std::string& path) { return path.ends_with('/') ? path : path + "/"; }
-
-/// Of the codes that the case sends, all channels.
-std::string stimulus_hash(const Plan& plan, const Case& the_case) {
-    const auto channels = static_cast<std::size_t>(plan.signal.channels);
-    const std::int64_t length = the_case.stimulus->length_samples();
-    const auto digest = make_code_digest();
-    std::vector<Code> codes;
-    for (std::int64_t first = 0; first < length; first += static_cast<std::int64_t>(hashed_at_once)) {
-        const auto instants = static_cast<std::size_t>(std::min<std::int64_t>(hashed_at_once, length - first));
-        codes.resize(instants * channels);
-        fill_case_codes(plan, the_case, first, codes);
-        digest->add(plan.signal.input, codes);
-    }
-    return digest->value();
-}
 
 std::string hash_of(const SampleFormat& format, std::span<const Code> codes) {
     const auto digest = make_code_digest();
@@ -96,7 +81,7 @@ std::string BaselineFiles::difference(const Plan& plan, const Case& the_case, co
     const std::int64_t length = the_case.stimulus->length_samples();
     if (entry.samples != length)
         return differs("its samples were", std::to_string(entry.samples), std::to_string(length));
-    if (stimulus_hash(plan, the_case) != entry.stimulus_sha256) return "its stimulus was another one";
+    if (stimulus_sha256(plan, the_case) != entry.stimulus_sha256) return "its stimulus was another one";
     return {};
 }
 
