@@ -37,15 +37,12 @@ Outcome<std::optional<BaselineContent>> read_before(const std::string& folder, c
         problems.insert(problems.end(), wrong->texts.begin(), wrong->texts.end());
         return std::optional<BaselineContent>();
     }
-    const Baseline& baseline = std::get<Baseline>(read);
+    Baseline& baseline = std::get<Baseline>(read);
     BaselineContent content;
     content.accepted_utc = baseline.accepted_utc;
     content.output = std::string(baseline.output.name);
     content.channels = baseline.channels;
-    for (const Baseline::Entry& entry : baseline.cases) {
-        content.cases.push_back({entry.name, entry.samples, entry.stimulus_sha256, entry.response_sha256, entry.kept,
-                                 entry.kept_samples, entry.block_samples, entry.block_sha256});
-    }
+    content.cases = std::move(baseline.cases);
     return std::optional<BaselineContent>(std::move(content));
 }
 

@@ -6,9 +6,7 @@
 #include "runner/cli/progress.hpp"
 #include "runner/commands.hpp"
 #include "runner/config/firmware_image.hpp"
-#include "runner/config/plan_file.hpp"
 #include "runner/config/repository.hpp"
-#include "runner/config/rig_file.hpp"
 #include "runner/record/run_folder.hpp"
 #include "runner/record/run_json.hpp"
 #include "runner/report/terminal_report.hpp"
@@ -120,25 +118,11 @@ void name_folders(std::vector<RunRequest>& requests, const Options& options) {
     }
 }
 
-/// All files are read before anything is said or touched, so that all their problems are told at once.
-Outcome<std::vector<RunRequest>> read_requests(const Options& options, const Desk& desk,
-                                               std::vector<std::string>& problems) {
+Outcome<std::vector<RunRequest>> make_requests(PlanAndRigs files, const Options& options, const Desk& desk) {
     std::vector<RunRequest> requests;
-    auto plan = read_plan(options.plan, desk.files, {options.root.value_or(""), options.seed});
-    if (auto* wrong = std::get_if<ReadProblems>(&plan)) problems = std::move(wrong->texts);
-    std::vector<Rig> rigs;
-    for (const std::string& path : options.rigs) {
-        auto rig = read_rig(path, desk.files);
-        if (auto* wrong = std::get_if<ReadProblems>(&rig)) {
-            problems.insert(problems.end(), wrong->texts.begin(), wrong->texts.end());
-        } else {
-            rigs.push_back(std::move(std::get<Rig>(rig)));
-        }
-    }
-    if (!problems.empty()) return requests;
     RunRequest common;
     common.tool_version = tool_version;
-    common.plan = std::move(std::get<Plan>(plan));
+    common.plan = std::move(files.plan);
     auto text = desk.files.read(options.plan, largest_config_bytes);
     if (!text) return text.error();
     common.plan_text = std::move(*text);
@@ -148,9 +132,9 @@ Outcome<std::vector<RunRequest>> read_requests(const Options& options, const Des
     common.out = options.out;
     common.seed = options.seed;
     common.root = options.root;
-    for (std::size_t i = 0; i < rigs.size(); ++i) {
+    for (std::size_t i = 0; i < files.rigs.size(); ++i) {
         requests.push_back(common);
-        if (auto read = read_rig_into(requests.back(), options.rigs[i], std::move(rigs[i]), options, desk); !read)
+        if (auto read = read_rig_into(requests.back(), options.rigs[i], std::move(files.rigs[i]), options, desk); !read)
             return read.error();
     }
     name_folders(requests, options);
@@ -163,9 +147,9 @@ Outcome<std::vector<RunRequest>> read_requests(const Options& options, const Des
 }  // namespace
 
 int check_command(const Options& options, const Desk& desk) {
-    std::vector<std::string> problems;
-    const auto requests = read_requests(options, desk, problems);
-    if (!problems.empty()) return tell_problems(problems, desk);
+    auto read = read_plan_and_rigs(options, desk);
+    if (const auto* problems = std::get_if<ReadProblems>(&read)) return tell_problems(problems->texts, desk);
+    const auto requests = make_requests(std::move(std::get<PlanAndRigs>(read)), options, desk);
     if (!requests) return tell(requests.error(), options, desk);
     if (interrupted()) return tell(interrupted_error(options.plan), options, desk);
 

@@ -2,6 +2,8 @@
 
 #include "runner/cli/case_selection.hpp"
 #include "runner/cli/exit_status.hpp"
+#include "runner/config/plan_file.hpp"
+#include "runner/config/rig_file.hpp"
 #include "runner/link/ports.hpp"
 #include "runner/report/terminal_report.hpp"
 #include "runner/world/printable.hpp"
@@ -35,6 +37,27 @@ int tell_problems(const std::vector<std::string>& problems, const Desk& desk) {
             (void)desk.terminal.write(Stream::err, problem + (problem.ends_with('\n') ? "" : "\n"));
     }
     return exit_status_of(Error{ErrorKind::input, "", "", ""});
+}
+
+std::variant<PlanAndRigs, ReadProblems> read_plan_and_rigs(const Options& options, const Desk& desk) {
+    PlanAndRigs made;
+    ReadProblems problems;
+    auto plan = read_plan(options.plan, desk.files, {options.root.value_or(""), options.seed});
+    if (auto* wrong = std::get_if<ReadProblems>(&plan)) {
+        problems = std::move(*wrong);
+    } else {
+        made.plan = std::move(std::get<Plan>(plan));
+    }
+    for (const std::string& path : options.rigs) {
+        auto rig = read_rig(path, desk.files);
+        if (auto* wrong = std::get_if<ReadProblems>(&rig)) {
+            problems.texts.insert(problems.texts.end(), wrong->texts.begin(), wrong->texts.end());
+        } else {
+            made.rigs.push_back(std::move(std::get<Rig>(rig)));
+        }
+    }
+    if (!problems.texts.empty()) return problems;
+    return made;
 }
 
 Outcome<std::vector<std::size_t>> selected_cases(const Plan& plan, const Options& options) {

@@ -4,11 +4,14 @@
 
 #include <string>
 #include <string_view>
+#include <variant>
 #include <vector>
 
 #include "oracle/judge/plan.hpp"
 #include "runner/cli/options.hpp"
 #include "runner/cli/terminal.hpp"
+#include "runner/config/problems.hpp"
+#include "runner/config/rig.hpp"
 #include "runner/record/json_answer.hpp"
 #include "runner/report/text_style.hpp"
 #include "runner/world/clock.hpp"
@@ -42,6 +45,13 @@ Outcome<void> say(const Desk& desk, std::string_view text);
 int tell(const Error& error, const Options& options, const Desk& desk);
 /// All that is wrong with the files, likewise; the exit status of wrong files.
 int tell_problems(const std::vector<std::string>& problems, const Desk& desk);
+/// What the command line names.
+struct PlanAndRigs {
+    Plan plan;
+    std::vector<Rig> rigs;  ///< in the order of the options
+};
+/// All files are read before anything is said or touched, so that all their problems are told at once.
+std::variant<PlanAndRigs, ReadProblems> read_plan_and_rigs(const Options& options, const Desk& desk);
 /// Which cases of the plan --case and --label select; all without them.
 Outcome<std::vector<std::size_t>> selected_cases(const Plan& plan, const Options& options);
 

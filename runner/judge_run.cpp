@@ -9,7 +9,7 @@
 #include "runner/report/people.hpp"
 #include "runner/world/interrupt.hpp"
 #include "runner/world/printable.hpp"
-#include "runner/world/sha256.hpp"
+#include "runner/world/stimulus_sha256.hpp"
 
 namespace halflsb {
 namespace {
@@ -110,18 +110,6 @@ void account_for(RunResult& run, const std::vector<std::string>& missing, const 
 }
 
 }  // namespace
-
-std::string stimulus_sha256(const Plan& plan, const Case& the_case) {
-    const auto digest = make_code_digest();
-    std::vector<Code> codes;
-    const std::int64_t length = the_case.stimulus->length_samples();
-    for (std::int64_t first = 0; first < length; first += block_samples) {
-        codes.resize(static_cast<std::size_t>(std::min(block_samples, length - first) * plan.signal.channels));
-        fill_case_codes(plan, the_case, first, codes);
-        digest->add(plan.signal.input, codes);
-    }
-    return digest->value();
-}
 
 Outcome<std::vector<std::size_t>> recorded_cases(const RecordedRun& record, const Plan& plan) {
     std::map<std::string, std::size_t> places;

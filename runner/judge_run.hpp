@@ -40,7 +40,4 @@ Outcome<CaseResult> judge_capture(const RecordedRun& record, const Plan& plan, c
 /// Cases that the recorded run meant to capture; an error when the plan does not have one of them.
 Outcome<std::vector<std::size_t>> recorded_cases(const RecordedRun& record, const Plan& plan);
 
-/// Of the codes that the case sends, all channels.
-std::string stimulus_sha256(const Plan& plan, const Case& the_case);
-
 }  // namespace halflsb

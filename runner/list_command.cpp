@@ -2,8 +2,6 @@
 #include <variant>
 
 #include "runner/commands.hpp"
-#include "runner/config/plan_file.hpp"
-#include "runner/config/rig_file.hpp"
 #include "runner/paper.hpp"
 #include "runner/report/people.hpp"
 #include "runner/world/interrupt.hpp"
@@ -53,32 +51,21 @@ std::string list_text(const Plan& plan, const CaseList& list, const std::vector<
 }  // namespace
 
 int list_command(const Options& options, const Desk& desk) {
-    std::vector<std::string> problems;
-    auto plan = read_plan(options.plan, desk.files, {options.root.value_or(""), options.seed});
-    if (auto* wrong = std::get_if<ReadProblems>(&plan)) problems = std::move(wrong->texts);
-    std::vector<Rig> rigs;
-    for (const std::string& path : options.rigs) {
-        auto rig = read_rig(path, desk.files);
-        if (auto* wrong = std::get_if<ReadProblems>(&rig)) {
-            problems.insert(problems.end(), wrong->texts.begin(), wrong->texts.end());
-        } else {
-            rigs.push_back(std::move(std::get<Rig>(rig)));
-        }
-    }
-    if (!problems.empty()) return tell_problems(problems, desk);
+    const auto read = read_plan_and_rigs(options, desk);
+    if (const auto* problems = std::get_if<ReadProblems>(&read)) return tell_problems(problems->texts, desk);
+    const auto& [plan, rigs] = std::get<PlanAndRigs>(read);
     if (rigs.size() > 1) {
         return tell({ErrorKind::usage, "--rig",
                      "--list tells the time on the wire of one rig, and there are " + std::to_string(rigs.size()),
                      "give one --rig"},
                     options, desk);
     }
-    const Plan& known = std::get<Plan>(plan);
-    const auto selected = selected_cases(known, options);
+    const auto selected = selected_cases(plan, options);
     if (!selected) return tell(selected.error(), options, desk);
     if (interrupted()) return tell(interrupted_error(options.plan), options, desk);
-    const CaseList list = list_cases(known, *selected, rigs.empty() ? nullptr : &rigs.front());
+    const CaseList list = list_cases(plan, *selected, rigs.empty() ? nullptr : &rigs.front());
     if (desk.answer != nullptr) desk.answer->set_list(list);
-    const auto written = say(desk, list_text(known, list, rigs, style_of(desk.terminal, Stream::out, options.colour)));
+    const auto written = say(desk, list_text(plan, list, rigs, style_of(desk.terminal, Stream::out, options.colour)));
     return written ? 0 : tell(written.error(), options, desk);
 }
 

@@ -3,9 +3,7 @@
 #include <variant>
 
 #include "runner/commands.hpp"
-#include "runner/config/plan_file.hpp"
 #include "runner/config/resolved_plan.hpp"
-#include "runner/config/rig_file.hpp"
 #include "runner/paper.hpp"
 #include "runner/report/people.hpp"
 #include "runner/world/interrupt.hpp"
@@ -45,7 +43,7 @@ std::string filter_text(const PredictedFilter& filter, bool say_channels, const 
     return text + laid_out(style, table);
 }
 
-std::string cases_text(const Prediction& prediction, const std::optional<Rig>& rig, const TextStyle& style) {
+std::string cases_text(const Prediction& prediction, const Rig* rig, const TextStyle& style) {
     Table table{{{"case", false, 0}, {"samples", true, 0}, {"latency", false, 2}, {"wire s", true, 0}}, {}, 2};
     std::int64_t total_samples = 0;
     for (const PredictedCase& predicted : prediction.cases) {
@@ -66,7 +64,7 @@ std::string cases_text(const Prediction& prediction, const std::optional<Rig>& r
     return text;
 }
 
-std::string prediction_text(const Prediction& prediction, const std::optional<Rig>& rig, const TextStyle& style) {
+std::string prediction_text(const Prediction& prediction, const Rig* rig, const TextStyle& style) {
     const Signal& signal = prediction.signal;
     std::string text = printable(prediction.title) + " (" + printable(prediction.plan_file) + "), on paper\n";
     text += "signal   " + rounded_text(signal.rate_hz, 6) + " Hz, " + text_of(signal.input) + " in, " +
@@ -95,25 +93,15 @@ int print_resolved(const Options& options, const Desk& desk) {
 
 int predict_command(const Options& options, const Desk& desk) {
     if (options.resolved) return print_resolved(options, desk);
-    auto plan = read_plan(options.plan, desk.files, {options.root.value_or(""), options.seed});
-    std::optional<Rig> rig;
-    std::vector<std::string> problems;
-    if (auto* wrong = std::get_if<ReadProblems>(&plan)) problems = std::move(wrong->texts);
-    if (!options.rigs.empty()) {
-        auto read = read_rig(options.rigs.front(), desk.files);
-        if (auto* wrong = std::get_if<ReadProblems>(&read)) {
-            problems.insert(problems.end(), wrong->texts.begin(), wrong->texts.end());
-        } else {
-            rig = std::move(std::get<Rig>(read));
-        }
-    }
-    if (!problems.empty()) return tell_problems(problems, desk);
-    const Plan& known = std::get<Plan>(plan);
-    const auto selected = selected_cases(known, options);
+    const auto read = read_plan_and_rigs(options, desk);
+    if (const auto* problems = std::get_if<ReadProblems>(&read)) return tell_problems(problems->texts, desk);
+    const auto& [plan, rigs] = std::get<PlanAndRigs>(read);
+    const Rig* rig = rigs.empty() ? nullptr : &rigs.front();
+    const auto selected = selected_cases(plan, options);
     if (!selected) return tell(selected.error(), options, desk);
     if (interrupted()) return tell(interrupted_error(options.plan), options, desk);
 
-    const Prediction prediction = predict(known, *selected, rig ? &*rig : nullptr);
+    const Prediction prediction = predict(plan, *selected, rig);
     if (desk.answer != nullptr) desk.answer->set_prediction(prediction);
     const auto written =
         say(desk, prediction_text(prediction, rig, style_of(desk.terminal, Stream::out, options.colour)));

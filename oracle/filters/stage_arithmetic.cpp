@@ -1,16 +1,11 @@
 #include "oracle/filters/stage_arithmetic.hpp"
 
+#include "stimuli/format_names.hpp"
 #include "stimuli/values_check.hpp"
 
 namespace halflsb {
 
 namespace {
-
-std::vector<std::string_view> format_names() {
-    std::vector<std::string_view> names;
-    for (const SampleFormat& format : sample_formats()) names.push_back(format.name);
-    return names;
-}
 
 // The later of two words that contradict each other is to blame: the one of this table.
 Error contradiction(const ParameterValues& values, std::string_view first, std::string_view second, std::string problem,

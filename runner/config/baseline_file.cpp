@@ -57,7 +57,7 @@ std::vector<std::string> read_hashes(TableReader& reader, std::string_view key) 
 }
 
 /// Sizes that cannot belong together.
-void check_sizes(TableReader& reader, const Baseline::Entry& entry) {
+void check_sizes(TableReader& reader, const BaselineCase& entry) {
     if (entry.kept_samples > entry.samples) {
         reader.refuse(reader.place_of("kept_samples"),
                       "kept_samples = " + std::to_string(entry.kept_samples) +
@@ -82,11 +82,11 @@ void check_sizes(TableReader& reader, const Baseline::Entry& entry) {
     }
 }
 
-std::optional<Baseline::Entry> read_entry(ReadContext& context, const TomlValue& table, const TableReader& top) {
+std::optional<BaselineCase> read_entry(ReadContext& context, const TomlValue& table, const TableReader& top) {
     TableReader reader(context, table, "[[case]]", &top);
     const Recipe& recipe = baseline_case_recipe();
     const ParameterValues values = reader.parameters(recipe);
-    Baseline::Entry entry;
+    BaselineCase entry;
     entry.block_sha256 = read_hashes(reader, "block_sha256");
     reader.refuse_unknown_keys();
     check_hash(reader, values, recipe, "stimulus_sha256");

@@ -12,24 +12,16 @@
 
 #include "oracle/judge/plan.hpp"
 #include "runner/config/reader.hpp"
+#include "runner/world/baseline.hpp"
 
 namespace halflsb {
 
 /// baseline.toml as it stands in the file.
 struct Baseline {
-    struct Entry {
-        std::string name;
-        std::int64_t samples = 0;  ///< instants
-        std::string stimulus_sha256, response_sha256;
-        std::string kept;  ///< file in the baseline's folder
-        std::int64_t kept_samples = 0;
-        std::int64_t block_samples = 0;  ///< 0: no hash of a stretch
-        std::vector<std::string> block_sha256;
-    };
     std::string accepted_utc;
     SampleFormat output;
     int channels = 1;
-    std::vector<Entry> cases;
+    std::vector<BaselineCase> cases;
 };
 
 /// Or the rendered messages.
@@ -56,9 +48,9 @@ private:
     const Folder& folder_at(const std::string& path, Place place);
     /// What differs between the plan's case and the accepted one, or "".
     std::string difference(const Plan& plan, const Case& the_case, const Baseline& baseline,
-                           const Baseline::Entry& entry) const;
+                           const BaselineCase& entry) const;
     std::optional<std::vector<Code>> kept_codes(const UnchangedRule& rule, const Baseline& baseline,
-                                                const Baseline::Entry& entry, Place place);
+                                                const BaselineCase& entry, Place place);
 
     ReadContext& context_;
     std::map<std::string, Folder> folders_;

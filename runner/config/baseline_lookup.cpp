@@ -5,33 +5,17 @@
 #include "runner/config/baseline_file.hpp"
 #include "runner/world/printable.hpp"
 #include "runner/world/sha256.hpp"
+#include "runner/world/stimulus_sha256.hpp"
 #include "stimuli/npy.hpp"
 
 namespace halflsb {
 
 namespace {
 
-constexpr std::string_view toml_name = "baseline.toml";
 constexpr std::string_view damaged_remedy = "take the baseline as it was committed, or accept a good run anew";
 constexpr std::string_view accept_remedy = "accept a good run with halflsb accept RUN";
-constexpr std::size_t hashed_at_once = 65'536;
 
 std::string shown_folder(const std::string& path) { return path.ends_with('/') ? path : path + "/"; }
-
-/// Of the codes that the case sends, all channels.
-std::string stimulus_hash(const Plan& plan, const Case& the_case) {
-    const auto channels = static_cast<std::size_t>(plan.signal.channels);
-    const std::int64_t length = the_case.stimulus->length_samples();
-    const auto digest = make_code_digest();
-    std::vector<Code> codes;
-    for (std::int64_t first = 0; first < length; first += static_cast<std::int64_t>(hashed_at_once)) {
-        const auto instants = static_cast<std::size_t>(std::min<std::int64_t>(hashed_at_once, length - first));
-        codes.resize(instants * channels);
-        fill_case_codes(plan, the_case, first, codes);
-        digest->add(plan.signal.input, codes);
-    }
-    return digest->value();
-}
 
 std::string hash_of(const SampleFormat& format, std::span<const Code> codes) {
     const auto digest = make_code_digest();
@@ -40,7 +24,7 @@ std::string hash_of(const SampleFormat& format, std::span<const Code> codes) {
 }
 
 /// Whether every hash that covers only kept codes is theirs.
-bool hashes_agree(const SampleFormat& format, const Baseline::Entry& entry, std::span<const Code> kept,
+bool hashes_agree(const SampleFormat& format, const BaselineCase& entry, std::span<const Code> kept,
                   std::size_t channels) {
     if (entry.kept_samples == entry.samples && hash_of(format, kept) != entry.response_sha256) return false;
     if (entry.block_samples == 0) return true;
@@ -60,7 +44,7 @@ const BaselineFiles::Folder& BaselineFiles::folder_at(const std::string& path, P
     const auto [at, is_new] = folders_.try_emplace(path);
     Folder& folder = at->second;
     if (!is_new) return folder;
-    const std::string file = shown_folder(path) + std::string(toml_name);
+    const std::string file = shown_folder(path) + baseline_file_name;
     auto bytes = context_.read_named_file(file, largest_named_file_bytes);
     if (!bytes) {
         // A path that leads out of the root is refused whether there is something or not.
@@ -85,7 +69,7 @@ const BaselineFiles::Folder& BaselineFiles::folder_at(const std::string& path, P
 }
 
 std::string BaselineFiles::difference(const Plan& plan, const Case& the_case, const Baseline& baseline,
-                                      const Baseline::Entry& entry) const {
+                                      const BaselineCase& entry) const {
     const auto differs = [](const std::string& what, const std::string& then, const std::string& now) {
         return what + " " + then + ", now " + now;
     };
@@ -97,12 +81,12 @@ std::string BaselineFiles::difference(const Plan& plan, const Case& the_case, co
     const std::int64_t length = the_case.stimulus->length_samples();
     if (entry.samples != length)
         return differs("its samples were", std::to_string(entry.samples), std::to_string(length));
-    if (stimulus_hash(plan, the_case) != entry.stimulus_sha256) return "its stimulus was another one";
+    if (stimulus_sha256(plan, the_case) != entry.stimulus_sha256) return "its stimulus was another one";
     return {};
 }
 
 std::optional<std::vector<Code>> BaselineFiles::kept_codes(const UnchangedRule& rule, const Baseline& baseline,
-                                                           const Baseline::Entry& entry, Place place) {
+                                                           const BaselineCase& entry, Place place) {
     const std::string path = shown_folder(rule.baseline) + entry.kept;
     const auto refuse = [&](const std::string& problem, std::string_view remedy) {
         context_.problems.add(place, quoted(path) + " of case " + quoted(entry.name) + ": " + printable(problem),
@@ -145,7 +129,7 @@ void BaselineFiles::take(const Plan& plan, const Case& the_case, Place place, Un
     }
     const Baseline& baseline = *folder.baseline;
     const auto entry = std::find_if(baseline.cases.begin(), baseline.cases.end(),
-                                    [&](const Baseline::Entry& e) { return e.name == the_case.name; });
+                                    [&](const BaselineCase& e) { return e.name == the_case.name; });
     if (entry == baseline.cases.end()) {
         rule.missing =
             "the baseline at " + where + " has no case " + quoted(the_case.name) + ": " + std::string(accept_remedy);

@@ -1,6 +1,6 @@
 #include "runner/config/baseline_words.hpp"
 
-#include "stimuli/sample_format.hpp"
+#include "stimuli/format_names.hpp"
 
 namespace halflsb {
 
@@ -23,12 +23,6 @@ Parameter count(std::string_view name, double least, std::string_view help) {
             .maximum = 1e10,
             .required = true,
             .help = help};
-}
-
-std::vector<std::string_view> format_names() {
-    std::vector<std::string_view> names;
-    for (const SampleFormat& format : sample_formats()) names.push_back(format.name);
-    return names;
 }
 
 constexpr double hash_characters = 64;

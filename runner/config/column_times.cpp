@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <charconv>
 #include <cmath>
+#include <cstdint>
 
 #include "stimuli/number_text.hpp"
 
@@ -62,14 +63,15 @@ double resolution_of(std::string_view number) {
     const std::size_t e = number.find_first_of("eE");
     const std::string_view mantissa = number.substr(0, e);
     const std::size_t point = mantissa.find('.');
-    int exponent = 0;
+    int written = 0;  // beyond 32 bits: 0 is as good as any, the number is 0 itself
     if (e != std::string_view::npos) {
         std::string_view digits = number.substr(e + 1);
         if (digits.starts_with('+')) digits.remove_prefix(1);
-        std::from_chars(digits.data(), digits.data() + digits.size(), exponent);
+        std::from_chars(digits.data(), digits.data() + digits.size(), written);
     }
-    if (point != std::string_view::npos) exponent -= static_cast<int>(mantissa.size() - point - 1);
-    return std::pow(10.0, exponent);
+    std::int64_t exponent = written;
+    if (point != std::string_view::npos) exponent -= static_cast<std::int64_t>(mantissa.size() - point - 1);
+    return std::pow(10.0, static_cast<double>(exponent));
 }
 
 }  // namespace halflsb

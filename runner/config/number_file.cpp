@@ -4,6 +4,7 @@
 #include <cmath>
 
 #include "runner/config/reader.hpp"
+#include "runner/config/value_text.hpp"
 #include "stimuli/number_text.hpp"
 
 namespace halflsb {

@@ -44,7 +44,7 @@ struct ReadCase {
     Case the_case;
     Place place;
     std::optional<Place> name_place;
-    bool is_clean = false;   ///< then it has a stimulus; its rules are its own only
+    bool is_clean = false;  ///< then it has a stimulus; its rules are its own only
 };
 ReadCase read_case(ReadContext& context, const TomlValue& table, const TableReader& top, const PlanFacts& facts,
                    std::optional<std::uint64_t> seed);

@@ -1,18 +1,12 @@
 #include "runner/config/plan_words.hpp"
 
 #include "oracle/judge/plan.hpp"
+#include "stimuli/format_names.hpp"
 #include "stimuli/rounding.hpp"
-#include "stimuli/sample_format.hpp"
 
 namespace halflsb {
 
 namespace {
-
-std::vector<std::string_view> format_names() {
-    std::vector<std::string_view> names;
-    for (const SampleFormat& format : sample_formats()) names.push_back(format.name);
-    return names;
-}
 
 /// The roundings with the default in front, where a choice has it.
 std::vector<std::string_view> roundings_with_default_first() {

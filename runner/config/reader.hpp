@@ -87,7 +87,4 @@ private:
 std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlEntry& entry, ReadContext& context,
                                          const TableReader* owner = nullptr);
 
-/// "from 1 to 65536 samples", "of at least 0 Hz", ""
-std::string range_text(const Parameter& parameter);
-
 }  // namespace halflsb

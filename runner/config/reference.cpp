@@ -10,6 +10,7 @@
 #include "runner/config/plan_words.hpp"
 #include "runner/config/reader.hpp"
 #include "runner/config/rig_words.hpp"
+#include "runner/config/value_text.hpp"
 #include "runner/world/nearest.hpp"
 #include "stimuli/number_text.hpp"
 #include "stimuli/stimulus.hpp"

@@ -1,10 +1,9 @@
 #include "runner/config/toml_text.hpp"
 
 #include <algorithm>
-#include <array>
 #include <cmath>
-#include <cstdio>
 
+#include "runner/world/toml_quoted.hpp"
 #include "stimuli/number_text.hpp"
 
 namespace halflsb {
@@ -13,22 +12,6 @@ namespace {
 
 constexpr std::size_t widest_line = 110;
 constexpr std::string_view indent = "    ";
-
-std::string toml_string(std::string_view text) {
-    std::string out = "\"";
-    for (const char c : text) {
-        if (c == '"' || c == '\\') {
-            out += {'\\', c};
-        } else if (static_cast<unsigned char>(c) < 0x20 || c == 0x7f) {
-            std::array<char, 8> escape{};
-            std::snprintf(escape.data(), escape.size(), "\\u%04x", static_cast<unsigned>(c));
-            out += escape.data();
-        } else {
-            out += c;
-        }
-    }
-    return out + "\"";
-}
 
 std::string toml_real(double value) {
     if (std::isnan(value)) return "nan";
@@ -65,14 +48,14 @@ std::string toml_key(std::string_view key) {
     const bool is_bare = !key.empty() && std::all_of(key.begin(), key.end(), [](char c) {
         return (c >= '0' && c <= '9') || (c >= 'a' && c <= 'z') || (c >= 'A' && c <= 'Z') || c == '-' || c == '_';
     });
-    return is_bare ? std::string(key) : toml_string(key);
+    return is_bare ? std::string(key) : toml_quoted(key);
 }
 
 std::string toml_value(const TomlValue& value) {
     std::string text;
     switch (value.kind) {
         case TomlValue::Kind::text:
-            return toml_string(value.text);
+            return toml_quoted(value.text);
         case TomlValue::Kind::integer:
             return std::to_string(value.integer);
         case TomlValue::Kind::real:

@@ -1,26 +1,8 @@
 #include "runner/record/baseline_toml.hpp"
 
-#include "runner/world/printable.hpp"
+#include "runner/world/toml_quoted.hpp"
 
 namespace halflsb {
-
-std::string toml_quoted(const std::string& text) {
-    std::string out = "\"";
-    for (const char c : valid_utf8(text)) {
-        const auto byte = static_cast<unsigned char>(c);
-        if (c == '"' || c == '\\') {
-            out += '\\';
-            out += c;
-        } else if (byte < 0x20 || byte == 0x7f) {
-            out += "\\u00";
-            out += "0123456789abcdef"[byte >> 4];
-            out += "0123456789abcdef"[byte & 15];
-        } else {
-            out += c;
-        }
-    }
-    return out + "\"";
-}
 
 std::string baseline_toml(const BaselineContent& content) {
     std::string out =

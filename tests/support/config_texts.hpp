@@ -8,6 +8,7 @@
 
 #include "runner/config/plan_file.hpp"
 #include "runner/config/rig_file.hpp"
+#include "runner/config/source_text.hpp"
 #include "tests/support/fake_files.hpp"
 
 namespace halflsb {
@@ -62,6 +63,16 @@ inline std::string with(std::string text, const std::string& from, const std::st
     const std::size_t at = text.find(from);
     REQUIRE(at != std::string::npos);
     return text.replace(at, from.size(), to);
+}
+
+/// The whole message about one line of a text, counted from 1, at the column of `at` in it.
+inline std::string message(const std::string& text, int line, const std::string& at, const std::string& problem,
+                           const std::string& remedy, const std::string& file = "plan.toml") {
+    const SourceText source(file, text);
+    const std::size_t column = source.line(line).find(at);
+    REQUIRE(column != std::string_view::npos);
+    return file + ":" + std::to_string(line) + ":" + std::to_string(column + 1) + ": " + problem + "\n    " +
+           std::string(source.line(line)) + "\n    " + std::string(column, ' ') + "^\n  " + remedy + "\n";
 }
 
 inline std::string joined(const ReadProblems& problems) {

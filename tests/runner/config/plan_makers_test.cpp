@@ -11,11 +11,7 @@ std::string shown(const Error& error) {
 }
 
 std::string message(const std::string& text, int line, const std::string& at, const Error& error) {
-    const SourceText source("plan.toml", text);
-    const std::size_t column = source.line(line).find(at);
-    REQUIRE(column != std::string_view::npos);
-    return "plan.toml:" + std::to_string(line) + ":" + std::to_string(column + 1) + ": " + shown(error) + "\n    " +
-           std::string(source.line(line)) + "\n    " + std::string(column, ' ') + "^\n  " + error.remedy + "\n";
+    return halflsb::message(text, line, at, shown(error), error.remedy);
 }
 
 const std::string step = "shape = \"step\"\nlength_samples = 256\n";  // lines 31 and 32 of good_plan

@@ -8,16 +8,6 @@ using namespace halflsb;
 
 namespace {
 
-/// The whole message about one line of good_plan with `from` replaced, at the column of `at` in the new line.
-std::string message(const std::string& text, int line, const std::string& at, const std::string& problem,
-                    const std::string& remedy) {
-    const SourceText source("plan.toml", text);
-    const std::size_t column = source.line(line).find(at);
-    REQUIRE(column != std::string_view::npos);
-    return "plan.toml:" + std::to_string(line) + ":" + std::to_string(column + 1) + ": " + problem + "\n    " +
-           std::string(source.line(line)) + "\n    " + std::string(column, ' ') + "^\n  " + remedy + "\n";
-}
-
 /// good_plan with `from` replaced by `to` must be refused by exactly that message.
 void refused(const std::string& from, const std::string& to, int line, const std::string& at,
              const std::string& problem, const std::string& remedy) {

@@ -6,25 +6,16 @@ using namespace halflsb;
 
 namespace {
 
-std::string message(const std::string& text, int line, const std::string& at, const std::string& problem,
-                    const std::string& remedy) {
-    const SourceText source("lab/rig.toml", text);
-    const std::size_t column = source.line(line).find(at);
-    REQUIRE(column != std::string_view::npos);
-    return "lab/rig.toml:" + std::to_string(line) + ":" + std::to_string(column + 1) + ": " + problem + "\n    " +
-           std::string(source.line(line)) + "\n    " + std::string(column, ' ') + "^\n  " + remedy + "\n";
-}
-
 void refused(const std::string& from, const std::string& to, int line, const std::string& at,
              const std::string& problem, const std::string& remedy) {
     const std::string text = with(good_rig, from, to);
-    CHECK(rig_problems(text) == message(text, line, at, problem, remedy));
+    CHECK(rig_problems(text) == message(text, line, at, problem, remedy, "lab/rig.toml"));
 }
 
 void refused_addition(const std::string& line, const std::string& at, const std::string& problem,
                       const std::string& remedy) {
     const std::string text = good_rig + "[commands]\n" + line + "\n";
-    CHECK(rig_problems(text) == message(text, 10, at, problem, remedy));
+    CHECK(rig_problems(text) == message(text, 10, at, problem, remedy, "lab/rig.toml"));
 }
 
 }  // namespace
@@ -75,7 +66,7 @@ TEST_CASE("rig: an invalid case may run up to ten times", "[config]") {
     const auto refusal = [](const std::string& line, const std::string& at, const std::string& problem,
                             const std::string& remedy) {
         const std::string text = good_rig + "[run]\n" + line + "\n";
-        CHECK(rig_problems(text) == message(text, 10, at, problem, remedy));
+        CHECK(rig_problems(text) == message(text, 10, at, problem, remedy, "lab/rig.toml"));
     };
     refusal("attempts = 0", "0", "attempts = 0 is below 1", "give a whole number from 1 to 10");
     refusal("attempts = 11", "11", "attempts = 11 is above 10", "give a whole number from 1 to 10");

@@ -129,6 +129,9 @@ TEST_CASE("signal file: a missing sample shows in the times", "[config]") {
           "1.3333333333333333 s\n    1,2\n    ^" +
               mend);
     CHECK(file_of("time_s,raw\n0,1\n1,2\n2,3\n").rate_hz == 1.0);
+    // Zero with the lowest exponents that 32 and 64 bits hold.
+    CHECK(file_of("time_s,raw\n0.0e-2147483648,1\n1,2\n2,3\n").rate_hz == 1.0);
+    CHECK(file_of("time_s,raw\n0.0e-9223372036854775808,1\n1,2\n2,3\n").rate_hz == 1.0);
     // Too coarse to tell a missing sample from a rounded time.
     CHECK(refusal_of("time_s,raw\n0.00,1\n0.01,2\n0.01,3\n", 200.0) ==
           "root/w.csv:3:1: the step of time_s is not constant: 0.01 s at sample 1, where 200 Hz wants 0.005 s\n    "

@@ -56,9 +56,3 @@ TEST_CASE("baseline: the text of its file", "[record]") {
               "block_sha256 = [\n    \"" +
               a + "\",\n    \"" + b + "\",\n]\n");
 }
-
-TEST_CASE("baseline: a text of TOML may hold anything", "[record]") {
-    CHECK(toml_quoted("a\"b\\c") == "\"a\\\"b\\\\c\"");
-    CHECK(toml_quoted("\n\x1b\x7f") == "\"\\u000a\\u001b\\u007f\"");
-    CHECK(toml_quoted("K\xC3\xA4se\xff") == "\"K\xC3\xA4se\xEF\xBF\xBD\"");
-}
