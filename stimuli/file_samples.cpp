@@ -70,7 +70,15 @@ Outcome<std::size_t> column_of(const Recipe& recipe, const ParameterValues& valu
     std::size_t number = 0;
     const auto [end, error] = std::from_chars(column->data(), column->data() + column->size(), number);
     const bool is_number = error == std::errc() && end == column->data() + column->size();
-    if (is_number && number >= 1 && number <= file.columns.size()) return number - 1;
+    if (is_number && number >= 1) {
+        // The numbers are those of the file, where the times are a column too.
+        if (number == file.time_column) {
+            return refused("column", "column \"" + *column + "\" of \"" + file.path + "\" holds the times", one_of);
+        }
+        const bool behind_times = file.time_column != 0 && number > file.time_column;
+        const std::size_t index = number - 1 - (behind_times ? 1 : 0);
+        if (index < file.columns.size()) return index;
+    }
     return refused("column", "\"" + file.path + "\" has no column \"" + *column + "\"", one_of);
 }
 
@@ -207,7 +215,8 @@ Shape file_shape() {
                      {.name = "column",
                       .type = ParameterType::text,
                       .maximum = 200,
-                      .help = "Name of the column, or its number from 1 in quotes; needed when there are several."},
+                      .help = "Name of the column, or its number in the file from 1, in quotes; needed when there are "
+                              "several."},
                      {.name = "holds",
                       .type = ParameterType::choice,
                       .choices = {"auto", "codes", "ratio", "unit"},

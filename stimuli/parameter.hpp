@@ -60,6 +60,7 @@ struct SignalFile {
     std::vector<std::vector<double>> columns;  ///< all of one length, none empty
     bool whole_numbers = false;                ///< an integer NPY, or a CSV without any fraction
     std::optional<double> rate_hz;             ///< where the file states it
+    std::size_t time_column = 0;  ///< which one of the file, from 1, held the times and is not here; 0: none
 };
 
 struct StimulusWords;

@@ -14,6 +14,7 @@ namespace {
 constexpr std::string_view time_word = "time_s", rate_word = "rate_hz";
 constexpr std::string_view how =
     "write the same count of numbers on every line, with a decimal point, between commas, semicolons or tabs";
+constexpr std::string_view point = "write numbers with a decimal point, 0.5";
 
 struct Cell {
     std::string_view text;   ///< without blanks around it
@@ -70,7 +71,8 @@ public:
         if (problem_.empty() && columns_.empty())
             refuse({1, 1}, "the file holds times and no samples", "add a column with the samples");
         if (!problem_.empty()) return problem_;
-        return SignalFile{name_.as_written, std::move(names_), std::move(columns_), whole_numbers_, rate_hz_};
+        return SignalFile{name_.as_written, std::move(names_), std::move(columns_),
+                          whole_numbers_,   rate_hz_,          time_column_ ? *time_column_ + 1 : 0};
     }
 
 private:
@@ -155,10 +157,11 @@ private:
     void read_numbers(int number, std::string_view line) {
         if (cells_.size() != columns_.size()) {
             const std::size_t last = std::min(cells_.size(), columns_.size() + 1) - 1;
+            const bool is_doubled = separator_ == ',' && cells_.size() == 2 * columns_.size();
             refuse(place_of(number, line, cells_[last].offset),
                    std::to_string(cells_.size()) + " columns in this line, " + std::to_string(columns_.size()) +
-                       " in those above",
-                   how);
+                       " in those above" + (is_doubled ? ": have the numbers a decimal comma?" : ""),
+                   is_doubled ? point : how);
             return;
         }
         for (std::size_t c = 0; c < cells_.size(); ++c) {
@@ -184,8 +187,7 @@ private:
         } else if (is_number) {
             refuse(place, quoted(text) + " is no finite number", "a sample is a finite number; mend or cut the record");
         } else if (text.find(',') != std::string_view::npos) {
-            refuse(place, quoted(text) + " is not one number: has it a decimal comma?",
-                   "write numbers with a decimal point, 0.5");
+            refuse(place, quoted(text) + " is not one number: has it a decimal comma?", point);
         } else {
             refuse(place, quoted(text) + " is not one number", how);
         }

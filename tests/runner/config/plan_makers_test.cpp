@@ -91,6 +91,23 @@ TEST_CASE("plan: a stimulus file is sent as it stands, at the rate of its case o
     CHECK(slower.find("600 Hz") != std::string::npos);
 }
 
+TEST_CASE("plan: the number of a column is the one in the file, the times counted", "[config]") {
+    FakeFiles files;
+    files.contents["./w.csv"] = "gross,time_s,net\n1,0.000000,4\n2,0.000833,5\n3,0.001667,6\n";
+    const auto column = [](const std::string& number) {
+        return with_stimulus("shape = \"file\"\nfile = \"w.csv\"\ncolumn = \"" + number + "\"\n");
+    };
+    CHECK(codes_of(plan_of(column("1"), files), 3) == std::vector<Code>{1, 2, 3});
+    CHECK(codes_of(plan_of(column("3"), files), 3) == std::vector<Code>{4, 5, 6});
+    const auto refused = [&](const std::string& number, const std::string& problem) {
+        CHECK(plan_problems(column(number), files) ==
+              "plan.toml:33:10: " + problem + "\n    column = \"" + number + "\"\n             ^\n  " +
+                  "Give column = one of: gross, net, or its number from 1, in quotes.\n");
+    };
+    refused("2", "column \"2\" of \"w.csv\" holds the times");
+    refused("4", "\"w.csv\" has no column \"4\"");
+}
+
 TEST_CASE("plan: a stage is refused at the word of the arithmetic that is to blame", "[config]") {
     // Poles at 0.99 do not survive two fraction bits.
     const std::string sharp = "kind = \"biquad-cascade\"\nsections = [[1, 0, 0, -1.98, 0.9801]]\n";

@@ -90,6 +90,9 @@ TEST_CASE("signal file: times state the sample rate and are no data", "[config]"
     const SignalFile file = file_of(times, 1200.0);
     CHECK(file.rate_hz == 1200.0);
     CHECK(file.names == std::vector<std::string>{"raw"});
+    CHECK(file.time_column == 1);
+    CHECK(file_of("raw,time_s\n5,0\n6,1\n").time_column == 2);
+    CHECK(file_of("raw\n5\n").time_column == 0);
     CHECK(file.columns == Columns{{5.0, 6.0, 7.0, 8.0}});
     CHECK(file_of(times).rate_hz == Approx(1200.0).epsilon(1e-6));
     // Another rate is stated as it is, for the shape to refuse.
@@ -165,6 +168,9 @@ TEST_CASE("signal file: ragged rows, text, NaN, gaps and decimal commas are refu
         refusal_of("0,5;0,25\n") ==
         "root/w.csv:1:1: \"0,5\" is not one number: has it a decimal comma?\n    0,5;0,25\n    ^\n  write numbers with "
         "a decimal point, 0.5");
+    CHECK(refusal_of("raw\n0,5\n") ==
+          "root/w.csv:2:3: 2 columns in this line, 1 in those above: have the numbers a decimal comma?\n    0,5\n      "
+          "^\n  write numbers with a decimal point, 0.5");
     CHECK(refusal_of("a,a\n1,2\n") ==
           "root/w.csv:1:3: two columns are called \"a\"\n    a,a\n      ^\n  give each column a name of its own");
 }
