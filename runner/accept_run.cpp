@@ -5,19 +5,18 @@
 #include <set>
 #include <variant>
 
+#include "runner/baseline_samples.hpp"
 #include "runner/record/capture_file.hpp"
 #include "runner/record/run_folder.hpp"
 #include "runner/report/people.hpp"
 #include "runner/report/rule_report.hpp"
-#include "runner/world/interrupt.hpp"
 #include "runner/world/printable.hpp"
-#include "runner/world/sha256.hpp"
 #include "stimuli/npy.hpp"
 
 namespace halflsb {
 namespace {
 
-constexpr std::int64_t read_samples = 4096;
+constexpr std::size_t most_files_waiting = 256;
 
 std::vector<const UnchangedRule*> unchanged_rules(const Case& the_case) {
     std::vector<const UnchangedRule*> rules;
@@ -25,136 +24,6 @@ std::vector<const UnchangedRule*> unchanged_rules(const Case& the_case) {
         if (const auto* unchanged = std::get_if<UnchangedRule>(&rule.kind)) rules.push_back(unchanged);
     }
     return rules;
-}
-
-/// Calls `take` with the codes of instants `from` .. `to` - 1, in blocks.
-template <class Take>
-Outcome<void> read_through(CaptureFile& capture, int channels, std::int64_t from, std::int64_t to, Take take) {
-    std::vector<Code> codes;
-    for (std::int64_t first = from; first < to; first += read_samples) {
-        if (interrupted()) return interrupted_error("accept");
-        codes.resize(static_cast<std::size_t>(std::min(read_samples, to - first) * channels));
-        if (auto read = capture.read(first, codes); !read) return read;
-        if (auto taken = take(first, codes); !taken) return taken;
-    }
-    return {};
-}
-
-Outcome<std::string> digest_of(CaptureFile& capture, const Signal& signal, std::int64_t from, std::int64_t to) {
-    const auto digest = make_code_digest();
-    auto read = read_through(capture, signal.channels, from, to,
-                             [&](std::int64_t, std::span<const Code> codes) -> Outcome<void> {
-                                 digest->add(signal.output, codes);
-                                 return {};
-                             });
-    if (!read) return read.error();
-    return digest->value();
-}
-
-Outcome<std::vector<std::string>> block_digests(CaptureFile& capture, const Signal& signal, std::int64_t block) {
-    std::vector<std::string> digests;
-    for (std::int64_t from = 0; from < capture.samples(); from += block) {
-        auto digest = digest_of(capture, signal, from, std::min(from + block, capture.samples()));
-        if (!digest) return digest.error();
-        digests.push_back(std::move(*digest));
-    }
-    return digests;
-}
-
-Outcome<BaselineCase> describe(CaptureFile& capture, const Plan& plan, const CaseResult& recorded,
-                               std::int64_t kept_samples) {
-    BaselineCase made;
-    made.name = recorded.name;
-    made.samples = capture.samples();
-    made.stimulus_sha256 = recorded.stimulus.sha256;
-    made.kept_samples = std::min(made.samples, kept_samples);
-    auto whole = digest_of(capture, plan.signal, 0, made.samples);
-    if (!whole) return whole.error();
-    made.response_sha256 = std::move(*whole);
-    if (made.kept_samples < made.samples) {
-        made.block_samples = (made.samples - 1) / most_baseline_blocks + 1;
-        auto blocks = block_digests(capture, plan.signal, made.block_samples);
-        if (!blocks) return blocks.error();
-        made.block_sha256 = std::move(*blocks);
-    }
-    return made;
-}
-
-/// Where a response first differs from what was accepted before: to the sample while that is kept, else to the stretch.
-Outcome<AcceptedCase> compare(CaptureFile& capture, const Plan& plan, const BaselineCase& before,
-                              const BaselineCase& now, const std::string& folder, const Files& files) {
-    AcceptedCase accepted{AcceptedCase::State::changed, now.name, std::nullopt, {}};
-    if (before.stimulus_sha256 != now.stimulus_sha256 || before.samples != now.samples) {
-        accepted.difference = "it has another stimulus than before";
-        return accepted;
-    }
-    if (before.response_sha256 == now.response_sha256) {
-        accepted.state = AcceptedCase::State::same;
-        return accepted;
-    }
-    const int channels = plan.signal.channels;
-    auto kept =
-        CaptureFile::open(files, folder + "/" + before.kept, folder + "/" + before.kept, plan.signal.output, channels);
-    if (!kept) {
-        accepted.difference = "the samples that were kept before cannot be read";
-        return accepted;
-    }
-    std::vector<Code> old;
-    auto read = read_through(
-        capture, channels, 0, std::min(kept->samples(), now.samples),
-        [&](std::int64_t first, std::span<const Code> codes) -> Outcome<void> {
-            if (accepted.first_different_samples) return {};
-            old.resize(codes.size());
-            if (auto got = kept->read(first, old); !got) return got;
-            const auto at =
-                static_cast<std::size_t>(std::mismatch(codes.begin(), codes.end(), old.begin()).first - codes.begin());
-            if (at == codes.size()) return {};
-            const auto width = static_cast<std::size_t>(channels);
-            accepted.first_different_samples = first + static_cast<std::int64_t>(at / width);
-            accepted.difference = "first different sample " + count_text(*accepted.first_different_samples);
-            if (channels > 1) accepted.difference += " on channel " + std::to_string(at % width + 1);
-            const auto shown = [&](Code code) {
-                return plan.signal.output.has_lsb() ? std::to_string(code)
-                                                    : rounded_text(value_of(plan.signal.output, code), 9);
-            };
-            accepted.difference += ", was " + shown(old[at]) + ", is " + shown(codes[at]);
-            return {};
-        });
-    if (!read) return read.error();
-    if (accepted.first_different_samples) return accepted;
-    accepted.difference = "it differs beyond the " + count_text(kept->samples()) + " samples that were kept";
-    if (before.block_samples > 0) {
-        auto blocks = block_digests(capture, plan.signal, before.block_samples);
-        if (!blocks) return blocks.error();
-        const auto common = std::min(blocks->size(), before.block_sha256.size());
-        for (std::size_t i = 0; i < common; ++i) {
-            if ((*blocks)[i] == before.block_sha256[i]) continue;
-            const std::int64_t from = static_cast<std::int64_t>(i) * before.block_samples;
-            accepted.difference = "first different sample between " + count_text(from) + " and " +
-                                  count_text(std::min(from + before.block_samples, now.samples) - 1);
-            break;
-        }
-    }
-    return accepted;
-}
-
-Outcome<std::int64_t> write_kept(CaptureFile& capture, const Signal& signal, std::int64_t samples,
-                                 const std::string& path, Files& files) {
-    auto file = files.open_output(path);
-    if (!file) return file.error();
-    const NpyType type = npy_type_of(signal.output);
-    if (auto put = (*file)->write(npy_header(type, samples, signal.channels)); !put) return put.error();
-    std::vector<std::byte> bytes;
-    auto read = read_through(capture, signal.channels, 0, samples,
-                             [&](std::int64_t, std::span<const Code> codes) -> Outcome<void> {
-                                 bytes.resize(codes.size() * bytes_of(type));
-                                 to_npy_bytes(signal.output, codes, bytes);
-                                 return (*file)->write(bytes);
-                             });
-    if (!read) return read.error();
-    if (auto done = (*file)->commit(); !done) return done.error();
-    return static_cast<std::int64_t>(npy_header_bytes) +
-           samples * signal.channels * static_cast<std::int64_t>(bytes_of(type));
 }
 
 /// The folder below the root, made where it is missing, with no part of it leading out of the root: a plan names it,
@@ -204,6 +73,18 @@ Outcome<void> check_all_kept(const Case& the_case, std::int64_t samples, std::in
                      "accept with --samples " + std::to_string(samples)};
     }
     return {};
+}
+
+/// A plan may name files up to a size, and this will be one.
+Outcome<void> check_kept_size(const Signal& signal, const BaselineCase& made) {
+    constexpr auto most = static_cast<std::int64_t>(largest_named_file_bytes);
+    if (kept_bytes(signal, made.kept_samples) <= most) return {};
+    const std::int64_t instant = kept_bytes(signal, 1) - kept_bytes(signal, 0);
+    return Error{ErrorKind::input, "case '" + printable(made.name) + "'",
+                 "its " + count_text(made.kept_samples) + " kept samples would take " +
+                     count_text(kept_bytes(signal, made.kept_samples)) + " bytes, and a plan reads files of at most " +
+                     count_text(most),
+                 "accept with --samples " + std::to_string((most - kept_bytes(signal, 0)) / instant) + " or fewer"};
 }
 
 }  // namespace
@@ -302,15 +183,16 @@ Outcome<AcceptedBaseline> accept_baseline(const RecordedRun& record, const Plan&
                                         plan.signal.channels);
         if (!opened) return opened.error();
         const auto capture = std::make_shared<CaptureFile>(std::move(*opened));
-        auto made = describe(*capture, plan, recorded, wish.kept_samples);
+        auto made = describe_case(*capture, plan, recorded, wish.kept_samples);
         if (!made) return made.error();
         if (auto enough = check_all_kept(plan.cases[match.case_index], made->samples, made->kept_samples); !enough)
             return enough.error();
+        if (auto fits = check_kept_size(plan.signal, *made); !fits) return fits.error();
         made->kept = kept_name(match, recorded.name, taken);
         AcceptedCase one{AcceptedCase::State::new_case, recorded.name, std::nullopt, {}};
         const auto old = known.find(recorded.name);
         if (old != known.end() && comparable) {
-            auto compared = compare(*capture, plan, *old->second, *made, *folder, files);
+            auto compared = compare_with_before(*capture, plan, *old->second, *made, *folder, files);
             if (!compared) return compared.error();
             one = std::move(*compared);
         } else if (old != known.end()) {
@@ -318,7 +200,8 @@ Outcome<AcceptedBaseline> accept_baseline(const RecordedRun& record, const Plan&
             one.difference = "its codes are of another format than before";
         }
         const bool kept_already =
-            one.state == AcceptedCase::State::same && *old->second == *made && files.exists(*folder + "/" + made->kept);
+            one.state == AcceptedCase::State::same && *old->second == *made &&
+            kept_samples_stand_there(*capture, plan.signal, made->kept_samples, *folder + "/" + made->kept, files);
         if (!kept_already) writes.push_back({capture, made->kept, made->kept_samples});
         content.cases.push_back(std::move(*made));
         accepted.cases.push_back(std::move(one));
@@ -326,15 +209,41 @@ Outcome<AcceptedBaseline> accept_baseline(const RecordedRun& record, const Plan&
     accepted.cases.insert(accepted.cases.end(), stays.begin(), stays.end());
     std::stable_sort(content.cases.begin(), content.cases.end(),
                      [](const BaselineCase& a, const BaselineCase& b) { return a.kept < b.kept; });
+    const std::string text = baseline_toml(content);
+    const std::string toml = *folder + "/" + baseline_file_name;
+    if (text.size() > largest_named_file_bytes) {
+        return Error{ErrorKind::input, toml,
+                     "it would have " + count_text(static_cast<std::int64_t>(text.size())) +
+                         " bytes, and a plan reads files of at most " +
+                         count_text(static_cast<std::int64_t>(largest_named_file_bytes)),
+                     "accept with more --samples, so that fewer cases need hashes of stretches, or split the plan"};
+    }
     if (auto folders = files.make_directories(*folder); !folders) return folders.error();
+    // Nothing takes its name before all of it is on the disk: the old baseline stays whole when there is no room.
+    std::vector<std::unique_ptr<OutputFile>> waiting;
+    const auto commit = [&waiting]() -> Outcome<void> {
+        for (const auto& file : waiting) {
+            if (auto done = file->commit(); !done) return done;
+        }
+        waiting.clear();
+        return {};
+    };
     for (const Write& write : writes) {
-        auto bytes = write_kept(*write.capture, plan.signal, write.samples, *folder + "/" + write.file, files);
-        if (!bytes) return bytes.error();
-        accepted.written_bytes += *bytes;
+        // Descriptors are few.
+        if (waiting.size() >= most_files_waiting) {
+            if (auto done = commit(); !done) return done.error();
+        }
+        auto file = write_kept_samples(*write.capture, plan.signal, write.samples, *folder + "/" + write.file, files);
+        if (!file) return file.error();
+        waiting.push_back(std::move(*file));
+        accepted.written_bytes += kept_bytes(plan.signal, write.samples);
         ++accepted.written_files;
     }
-    const std::string text = baseline_toml(content);
-    if (auto put = files.write(*folder + "/" + baseline_file_name, text); !put) return put.error();
+    auto file = files.open_output(toml);
+    if (!file) return file.error();
+    if (auto put = (*file)->write(std::as_bytes(std::span(text))); !put) return put.error();
+    waiting.push_back(std::move(*file));
+    if (auto done = commit(); !done) return done.error();
     accepted.written_bytes += static_cast<std::int64_t>(text.size());
     ++accepted.written_files;
     return accepted;
