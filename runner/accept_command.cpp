@@ -98,13 +98,12 @@ int accept_command(const Options& options, const Desk& desk) {
     struct Target {
         std::string baseline;
         std::vector<Judgement::Match> matches;
-        std::optional<BaselineContent> before;
     };
     std::vector<Target> targets;
     for (auto& [baseline, matches] : cases_by_baseline(*plan, judgement->matches)) {
         auto before = read_before(wish.root + "/" + baseline, desk.files, problems);
         if (!before) return tell(before.error(), options, desk);
-        targets.push_back({baseline, matches, std::move(*before)});
+        targets.push_back({baseline, matches});
     }
     if (!problems.empty()) return tell_problems(problems, desk);
     if (targets.empty()) {
@@ -115,7 +114,11 @@ int accept_command(const Options& options, const Desk& desk) {
     const TextStyle style = style_of(desk.terminal, Stream::out, options.colour);
     for (const Target& target : targets) {
         wish.baseline = target.baseline;
-        const auto accepted = accept_baseline(*record, *plan, target.matches, target.before, wish, desk.files);
+        // Two spellings of one folder: what the first wrote stays.
+        const auto before = read_before(wish.root + "/" + target.baseline, desk.files, problems);
+        if (!before) return tell(before.error(), options, desk);
+        if (!problems.empty()) return tell_problems(problems, desk);
+        const auto accepted = accept_baseline(*record, *plan, target.matches, *before, wish, desk.files);
         if (!accepted) return tell(accepted.error(), options, desk);
         if (desk.answer != nullptr) desk.answer->add_baseline(*accepted);
         if (auto written = say(desk, accepted_text(*accepted, style)); !written)

@@ -5,15 +5,18 @@
 #include <set>
 #include <variant>
 
-#include "runner/accepted_capture.hpp"
+#include "runner/baseline_samples.hpp"
 #include "runner/record/capture_file.hpp"
 #include "runner/record/run_folder.hpp"
 #include "runner/report/people.hpp"
 #include "runner/report/rule_report.hpp"
 #include "runner/world/printable.hpp"
+#include "stimuli/npy.hpp"
 
 namespace halflsb {
 namespace {
+
+constexpr std::size_t most_files_waiting = 256;
 
 std::vector<const UnchangedRule*> unchanged_rules(const Case& the_case) {
     std::vector<const UnchangedRule*> rules;
@@ -70,6 +73,18 @@ Outcome<void> check_all_kept(const Case& the_case, std::int64_t samples, std::in
                      "accept with --samples " + std::to_string(samples)};
     }
     return {};
+}
+
+/// A plan may name files up to a size, and this will be one.
+Outcome<void> check_kept_size(const Signal& signal, const BaselineCase& made) {
+    constexpr auto most = static_cast<std::int64_t>(largest_named_file_bytes);
+    if (kept_bytes(signal, made.kept_samples) <= most) return {};
+    const std::int64_t instant = kept_bytes(signal, 1) - kept_bytes(signal, 0);
+    return Error{ErrorKind::input, "case '" + printable(made.name) + "'",
+                 "its " + count_text(made.kept_samples) + " kept samples would take " +
+                     count_text(kept_bytes(signal, made.kept_samples)) + " bytes, and a plan reads files of at most " +
+                     count_text(most),
+                 "accept with --samples " + std::to_string((most - kept_bytes(signal, 0)) / instant) + " or fewer"};
 }
 
 }  // namespace
@@ -168,15 +183,16 @@ Outcome<AcceptedBaseline> accept_baseline(const RecordedRun& record, const Plan&
                                         plan.signal.channels);
         if (!opened) return opened.error();
         const auto capture = std::make_shared<CaptureFile>(std::move(*opened));
-        auto made = describe_capture(*capture, plan, recorded, wish.kept_samples);
+        auto made = describe_case(*capture, plan, recorded, wish.kept_samples);
         if (!made) return made.error();
         if (auto enough = check_all_kept(plan.cases[match.case_index], made->samples, made->kept_samples); !enough)
             return enough.error();
+        if (auto fits = check_kept_size(plan.signal, *made); !fits) return fits.error();
         made->kept = kept_name(match, recorded.name, taken);
         AcceptedCase one{AcceptedCase::State::new_case, recorded.name, std::nullopt, {}};
         const auto old = known.find(recorded.name);
         if (old != known.end() && comparable) {
-            auto compared = compare_capture(*capture, plan, *old->second, *made, *folder, files);
+            auto compared = compare_with_before(*capture, plan, *old->second, *made, *folder, files);
             if (!compared) return compared.error();
             one = std::move(*compared);
         } else if (old != known.end()) {
@@ -184,7 +200,8 @@ Outcome<AcceptedBaseline> accept_baseline(const RecordedRun& record, const Plan&
             one.difference = "its codes are of another format than before";
         }
         const bool kept_already =
-            one.state == AcceptedCase::State::same && *old->second == *made && files.exists(*folder + "/" + made->kept);
+            one.state == AcceptedCase::State::same && *old->second == *made &&
+            kept_samples_stand_there(*capture, plan.signal, made->kept_samples, *folder + "/" + made->kept, files);
         if (!kept_already) writes.push_back({capture, made->kept, made->kept_samples});
         content.cases.push_back(std::move(*made));
         accepted.cases.push_back(std::move(one));
@@ -192,15 +209,41 @@ Outcome<AcceptedBaseline> accept_baseline(const RecordedRun& record, const Plan&
     accepted.cases.insert(accepted.cases.end(), stays.begin(), stays.end());
     std::stable_sort(content.cases.begin(), content.cases.end(),
                      [](const BaselineCase& a, const BaselineCase& b) { return a.kept < b.kept; });
+    const std::string text = baseline_toml(content);
+    const std::string toml = *folder + "/" + baseline_file_name;
+    if (text.size() > largest_named_file_bytes) {
+        return Error{ErrorKind::input, toml,
+                     "it would have " + count_text(static_cast<std::int64_t>(text.size())) +
+                         " bytes, and a plan reads files of at most " +
+                         count_text(static_cast<std::int64_t>(largest_named_file_bytes)),
+                     "accept with more --samples, so that fewer cases need hashes of stretches, or split the plan"};
+    }
     if (auto folders = files.make_directories(*folder); !folders) return folders.error();
+    // Nothing takes its name before all of it is on the disk: the old baseline stays whole when there is no room.
+    std::vector<std::unique_ptr<OutputFile>> waiting;
+    const auto commit = [&waiting]() -> Outcome<void> {
+        for (const auto& file : waiting) {
+            if (auto done = file->commit(); !done) return done;
+        }
+        waiting.clear();
+        return {};
+    };
     for (const Write& write : writes) {
-        auto bytes = write_kept_samples(*write.capture, plan.signal, write.samples, *folder + "/" + write.file, files);
-        if (!bytes) return bytes.error();
-        accepted.written_bytes += *bytes;
+        // Descriptors are few.
+        if (waiting.size() >= most_files_waiting) {
+            if (auto done = commit(); !done) return done.error();
+        }
+        auto file = write_kept_samples(*write.capture, plan.signal, write.samples, *folder + "/" + write.file, files);
+        if (!file) return file.error();
+        waiting.push_back(std::move(*file));
+        accepted.written_bytes += kept_bytes(plan.signal, write.samples);
         ++accepted.written_files;
     }
-    const std::string text = baseline_toml(content);
-    if (auto put = files.write(*folder + "/" + baseline_file_name, text); !put) return put.error();
+    auto file = files.open_output(toml);
+    if (!file) return file.error();
+    if (auto put = (*file)->write(std::as_bytes(std::span(text))); !put) return put.error();
+    waiting.push_back(std::move(*file));
+    if (auto done = commit(); !done) return done.error();
     accepted.written_bytes += static_cast<std::int64_t>(text.size());
     ++accepted.written_files;
     return accepted;

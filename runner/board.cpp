@@ -6,6 +6,7 @@
 
 #include "runner/link/serial.hpp"
 #include "runner/wire/framed_wire.hpp"
+#include "runner/wire/wire_cost.hpp"
 #include "runner/world/command.hpp"
 
 namespace halflsb {
@@ -15,6 +16,31 @@ namespace {
 constexpr double probe_s = 1.0;
 /// Of tidying up: a greeting, then START, its counters, a setting and the counters once more.
 constexpr double brief_greeting_s = 0.4, brief_answer_s = 0.15, brief_resend_s = 0.05;
+/// Somebody waits for the program to end, and may be about to kill it.
+constexpr double longest_drain_s = 4.0;
+/// Of the greeting, what each filter and each setting takes on the line.
+constexpr std::int64_t page_bytes = 100;
+/// By docs/wire.md.
+constexpr std::int64_t most_blocks_in_flight = 64;
+
+/// What is in flight when a stream is left must pass the line before the board sees a question, and its greeting after
+/// that.
+double drain_seconds(const Board& board, const Rig& rig) {
+    const Greeting& greeting = board.greeting;
+    const BoardFilter& filter = greeting.filters[board.filter_number];
+    const std::int64_t block = std::min(greeting.max_block_samples, rig.block_samples);
+    // Credit may be more blocks where they are smaller than they could be.
+    const std::int64_t in_flight = std::min<std::int64_t>(
+        std::int64_t{greeting.credit_blocks} * greeting.max_block_samples, most_blocks_in_flight * block);
+    const auto width = [](const SampleFormat& format, int channels) {
+        return format.word_bytes() * static_cast<std::size_t>(channels);
+    };
+    WireCost cost =
+        wire_cost(in_flight, block, width(filter.input, filter.channels_in), width(filter.output, filter.channels_out));
+    cost.bytes_to_host += page_bytes * static_cast<std::int64_t>(greeting.filters.size() + greeting.settings.size());
+    // The rig's rate: a pseudo-terminal has none of its own, and may be paced.
+    return std::min(wire_seconds(cost, rig.baud), longest_drain_s);
+}
 
 std::string filter_names(const Greeting& greeting) {
     std::string names;
@@ -161,7 +187,7 @@ Outcome<void> greet_again(Board& board, const Rig& rig, const Clock& clock) {
 }
 
 Outcome<void> greet_briefly(Board& board, const Rig& rig, const Clock& clock) {
-    WireLimits limits = limits_of(rig, brief_greeting_s);
+    WireLimits limits = limits_of(rig, brief_greeting_s + drain_seconds(board, rig));
     limits.answer = seconds(brief_answer_s);
     limits.resend = seconds(brief_resend_s);
     return greet_over_the_same_link(board, limits, clock);

@@ -39,7 +39,8 @@ Outcome<std::size_t> agreeing_filter(const Greeting& greeting, const Signal& sig
 
 /// After a case went wrong: a new session over the same port, with the same firmware and filter.
 Outcome<void> greet_again(Board& board, const Rig& rig, const Clock& clock);
-/// The same when there is something left to tidy up: about a second for all that follows, or an Error.
+/// The same when there is something left to tidy up: about a second for all that follows and what the line needs for
+/// the samples in flight, a few seconds at most, or an Error.
 Outcome<void> greet_briefly(Board& board, const Rig& rig, const Clock& clock);
 
 BoardFacts facts_of(const Board& board, const Rig& rig);

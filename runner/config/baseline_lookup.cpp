@@ -12,7 +12,8 @@ namespace halflsb {
 
 namespace {
 
-constexpr std::string_view damaged_remedy = "take the baseline as it was committed, or accept a good run anew";
+constexpr std::string_view damaged_remedy =
+    "take the baseline as it was committed, or remove its folder and accept a good run anew";
 constexpr std::string_view accept_remedy = "accept a good run with halflsb accept RUN";
 
 std::string shown_folder(const std::string& path) { return path.ends_with('/') ? path : path + "/"; }
@@ -136,9 +137,13 @@ void BaselineFiles::take(const Plan& plan, const Case& the_case, Place place, Un
         return;
     }
     if (const std::string what = difference(plan, the_case, baseline, *entry); !what.empty()) {
+        // As long as it stands there no run can be made that could take its place.
+        const bool all_differ =
+            baseline.output.name != plan.signal.output.name || baseline.channels != plan.signal.channels;
+        const std::string obstacle = all_differ ? where : "this case from " + where + baseline_file_name;
         context_.problems.add(
             place, "the baseline at " + where + " accepted case " + quoted(the_case.name) + " otherwise: " + what,
-            "take the change back, or accept a good run anew with halflsb accept RUN");
+            "take the change back, or remove " + obstacle + ", check again and accept that run");
         return;
     }
     const bool is_whole = entry->kept_samples == entry->samples;

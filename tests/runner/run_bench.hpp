@@ -69,6 +69,7 @@ struct RunBench {
         request.rig.file = "rig.toml";
         request.rig.name = "bench 3";
         request.rig.port = "fake";
+        request.rig.baud = 921600;
         request.rig.block_samples = 64;
         request.rig.answer_s = 2.0;
         request.rig.greet_s = 5.0;

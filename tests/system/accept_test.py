@@ -14,9 +14,11 @@ ERROR = '[[rule]]\nkind = "error"\nmax_lsb = 1.0\n'
 
 
 class Accept(Case):
-    def captured(self, name="run", cases=NOISE + STEP, faults=(), status=None, rules=ERROR + UNCHANGED, options=(), **more):
+    def captured(self, name="run", cases=NOISE + STEP, faults=(), status=None, rules=ERROR + UNCHANGED, options=(), formats="q15", **more):
+        plan = self.plan(cases, rules=rules, **more)
+        plan.write_text(plan.read_text().replace('"q15"', f'"{formats}"'))
         with self.virtual_board("--serial", "CW7-0003", *[word for fault in faults for word in ("--fault", fault)]):
-            done = halflsb("check", self.plan(cases, rules=rules, **more), "--rig",
+            done = halflsb("check", plan, "--rig",
                            self.rig(wire="answer_s = 0.5\ngreet_s = 1.0\n"), "--out", self.folder / name, *options, cwd=self.folder)
         if status is not None:
             self.assert_status(done, status)
@@ -121,6 +123,63 @@ class Accept(Case):
         file.write_text("title = \n")
         self.accept(status=65)
         self.assertEqual(file.read_text(), "title = \n")
+
+    def test_kept_samples_that_were_damaged_are_written_anew(self):
+        self.captured(status=2)
+        self.accept()
+        kept = self.folder / "baseline" / "001-noise.npy"
+        whole = kept.read_bytes()
+        kept.write_bytes(whole[:-1] + bytes([whole[-1] ^ 1]))
+        refused = self.captured("refused", status=65)
+        self.assertIn("take the baseline as it was committed, or remove its folder and accept a good run anew", refused.err)
+        self.assertIn("wrote 2 files", self.accept().out)
+        self.assertEqual(kept.read_bytes(), whole)
+        self.captured("again", status=0)
+
+    def test_a_case_of_another_stimulus_is_accepted_as_the_refusal_says(self):
+        self.captured(status=2)
+        self.accept()
+        other = NOISE.replace("seed = 3", "seed = 4") + STEP
+        refused = self.captured("refused", cases=other, status=65)
+        self.assertIn("  take the change back, or remove this case from baseline/baseline.toml, check again and accept that run\n", refused.err)
+        file = self.folder / "baseline" / "baseline.toml"
+        head, noise, step = file.read_text().split("[[case]]\n")
+        self.assertIn('name = "noise"', noise)
+        file.write_text(head + "[[case]]\n" + step)
+        self.captured("other", cases=other, status=2)
+        out = self.accept("other").out
+        self.assertRegex(out, r"(?m)^  new +noise$")
+        self.assertRegex(out, r"(?m)^  same +step$")
+        self.captured("again", cases=other, status=0)
+
+    def test_two_spellings_of_one_folder_keep_the_cases_of_both(self):
+        rule = '[[case.rule]]\nkind = "unchanged"\nbaseline = "{}"\n'
+        cases = NOISE + rule.format("baseline") + STEP + rule.format("./baseline/")
+        self.captured(cases=cases, rules=ERROR, status=2)
+        self.accept()
+        self.assertEqual([case["name"] for case in self.baseline()["case"]], ["noise", "step"])
+        self.captured("again", cases=cases, rules=ERROR, status=0)
+
+    def test_more_kept_samples_than_a_plan_may_read_are_refused(self):
+        self.captured(cases=NOISE.replace("6000", "4300000"), board_filter="average-i32", formats="i32", status=2)
+        err = self.accept("run", "--samples", "5000000", status=65).err
+        self.assertIn("its 4,300,000 kept samples would take 17,200,128 bytes, and a plan reads files of at most 16,777,216", err)
+        self.assertIn("  accept with --samples 4194272 or fewer\n", err)
+        self.nothing_written()
+        self.accept("run", "--samples", "4194272")
+        self.assertEqual((self.folder / "baseline" / "001-noise.npy").stat().st_size, 16 << 20)
+
+    def test_a_baseline_that_cannot_be_written_whole_stays_as_it_was(self):
+        self.captured(status=2)
+        self.accept()
+        self.captured("changed", faults=("A01",), status=1)
+        baseline = self.folder / "baseline"
+        before = {path.name: path.read_bytes() for path in baseline.iterdir()}
+        (baseline / "baseline.toml.part").mkdir()  # where the last file would be written first
+        self.accept("changed", status=73)
+        (baseline / "baseline.toml.part").rmdir()
+        self.assertEqual({path.name: path.read_bytes() for path in baseline.iterdir()}, before)
+        self.captured("again", status=0)
 
     def test_a_folder_that_cannot_be_written(self):
         self.captured(status=2)

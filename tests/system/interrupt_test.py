@@ -40,6 +40,23 @@ class Interrupt(Case):
                 self.assertEqual(len(list((self.folder / "run" / "captures").iterdir())), 1)
                 support.shutil.rmtree(self.folder / "run")
 
+    def test_settings_are_put_back_through_a_slow_line(self):
+        case = NOISE.replace('name = "noise"\n', 'name = "quick"\nsettings = { average-points = 4 }\n').replace("6000", "2000000")
+        unknown = {"filter_text": '[[filter]]\nkind = "unknown"\n', "rules": '[[rule]]\nkind = "unchanged"\n'}
+        plan = self.plan(case, board_filter="average", **unknown)
+        with self.virtual_board("--baud", "115200"):
+            process = subprocess.Popen([str(support.HALFLSB), "check", str(plan), "--rig", str(self.rig(baud=115200)), "--out", str(self.folder / "run")],
+                                       stdout=subprocess.PIPE, stderr=subprocess.PIPE)
+            for line in process.stdout:
+                if line.startswith(b"  cases "):
+                    break
+            time.sleep(0.3)  # 17 kB in flight, 1.5 s on that line
+            process.send_signal(signal.SIGINT)
+            _, err = process.communicate(timeout=20)
+        self.assertEqual(process.returncode, 130, err)
+        self.assertNotIn(b"keeps settings", err)
+        self.assertEqual(self.record()["warnings"], [])
+
     def test_while_a_command_of_the_rig_runs(self):
         rig = self.rig(more='[commands]\nbefore_run = [["sh", "-c", "touch started; sleep 600"]]\n')
         process = subprocess.Popen([str(support.HALFLSB), "check", str(self.plan(STEP)), "--rig", str(rig), "--out", str(self.folder / "run")],

@@ -64,8 +64,11 @@ std::string at_rule(const std::string& problem, const std::string& remedy) {
     return "plan.toml:37:1: " + problem + "\n    [[case.rule]]\n    ^\n  " + remedy + "\n";
 }
 
-constexpr const char* damaged = "take the baseline as it was committed, or accept a good run anew";
-constexpr const char* take_back = "take the change back, or accept a good run anew with halflsb accept RUN";
+constexpr const char* damaged =
+    "take the baseline as it was committed, or remove its folder and accept a good run anew";
+constexpr const char* take_back =
+    "take the change back, or remove this case from baseline/baseline.toml, check again and accept that run";
+constexpr const char* take_all_back = "take the change back, or remove baseline/, check again and accept that run";
 
 }  // namespace
 
@@ -115,8 +118,8 @@ TEST_CASE("baseline: one of another stimulus, length, format or count of channel
     CHECK(refusal(stimulus_hash(), std::string(64, 'a')) ==
           at_rule(otherwise + "its stimulus was another one", take_back));
     CHECK(refusal("output = \"q15\"", "output = \"q31\"") ==
-          at_rule(otherwise + "its output was q31, now q15", take_back));
-    CHECK(refusal("channels = 1", "channels = 2") == at_rule(otherwise + "its channels were 2, now 1", take_back));
+          at_rule(otherwise + "its output was q31, now q15", take_all_back));
+    CHECK(refusal("channels = 1", "channels = 2") == at_rule(otherwise + "its channels were 2, now 1", take_all_back));
     const std::vector<Code> kept(response.begin(), response.begin() + 4);
     CHECK(plan_problems(plan_text(),
                         files_with(with(long_baseline_text(), "samples = 6", "samples = 7"), npy_of(kept))) ==

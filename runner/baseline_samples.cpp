@@ -1,4 +1,4 @@
-#include "runner/accepted_capture.hpp"
+#include "runner/baseline_samples.hpp"
 
 #include <algorithm>
 #include <span>
@@ -49,8 +49,8 @@ Outcome<std::vector<std::string>> block_digests(CaptureFile& capture, const Sign
 
 }  // namespace
 
-Outcome<BaselineCase> describe_capture(CaptureFile& capture, const Plan& plan, const CaseResult& recorded,
-                                       std::int64_t kept_samples) {
+Outcome<BaselineCase> describe_case(CaptureFile& capture, const Plan& plan, const CaseResult& recorded,
+                                    std::int64_t kept_samples) {
     BaselineCase made;
     made.name = recorded.name;
     made.samples = capture.samples();
@@ -68,8 +68,8 @@ Outcome<BaselineCase> describe_capture(CaptureFile& capture, const Plan& plan, c
     return made;
 }
 
-Outcome<AcceptedCase> compare_capture(CaptureFile& capture, const Plan& plan, const BaselineCase& before,
-                                      const BaselineCase& now, const std::string& folder, const Files& files) {
+Outcome<AcceptedCase> compare_with_before(CaptureFile& capture, const Plan& plan, const BaselineCase& before,
+                                          const BaselineCase& now, const std::string& folder, const Files& files) {
     AcceptedCase accepted{AcceptedCase::State::changed, now.name, std::nullopt, {}};
     if (before.stimulus_sha256 != now.stimulus_sha256 || before.samples != now.samples) {
         accepted.difference = "it has another stimulus than before";
@@ -125,8 +125,29 @@ Outcome<AcceptedCase> compare_capture(CaptureFile& capture, const Plan& plan, co
     return accepted;
 }
 
-Outcome<std::int64_t> write_kept_samples(CaptureFile& capture, const Signal& signal, std::int64_t samples,
-                                         const std::string& path, Files& files) {
+bool kept_samples_stand_there(CaptureFile& capture, const Signal& signal, std::int64_t samples, const std::string& path,
+                              const Files& files) {
+    auto there = CaptureFile::open(files, path, path, signal.output, signal.channels);
+    if (!there || there->samples() != samples) return false;
+    std::vector<Code> old;
+    bool same = true;
+    const auto read = read_through(capture, signal.channels, 0, samples,
+                                   [&](std::int64_t first, std::span<const Code> codes) -> Outcome<void> {
+                                       old.resize(codes.size());
+                                       if (auto got = there->read(first, old); !got) return got;
+                                       same = same && std::equal(codes.begin(), codes.end(), old.begin());
+                                       return {};
+                                   });
+    return read && same;
+}
+
+std::int64_t kept_bytes(const Signal& signal, std::int64_t samples) {
+    return static_cast<std::int64_t>(npy_header_bytes) +
+           samples * signal.channels * static_cast<std::int64_t>(bytes_of(npy_type_of(signal.output)));
+}
+
+Outcome<std::unique_ptr<OutputFile>> write_kept_samples(CaptureFile& capture, const Signal& signal,
+                                                        std::int64_t samples, const std::string& path, Files& files) {
     auto file = files.open_output(path);
     if (!file) return file.error();
     const NpyType type = npy_type_of(signal.output);
@@ -139,9 +160,7 @@ Outcome<std::int64_t> write_kept_samples(CaptureFile& capture, const Signal& sig
                                  return (*file)->write(bytes);
                              });
     if (!read) return read.error();
-    if (auto done = (*file)->commit(); !done) return done.error();
-    return static_cast<std::int64_t>(npy_header_bytes) +
-           samples * signal.channels * static_cast<std::int64_t>(bytes_of(type));
+    return file;
 }
 
 }  // namespace halflsb
