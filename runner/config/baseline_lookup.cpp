@@ -148,11 +148,13 @@ void BaselineFiles::take(const Plan& plan, const Case& the_case, Place place, Un
     }
     const bool is_whole = entry->kept_samples == entry->samples;
     if (rule.largest && rule.largest->number > 0.0 && !is_whole) {
-        context_.problems.add(
-            place,
-            "max_lsb needs every sample of case " + quoted(the_case.name) + ", the baseline at " + where + " kept " +
-                std::to_string(entry->kept_samples) + " of " + std::to_string(entry->samples),
-            "leave max_lsb out: the whole response is then compared bit for bit; or shorten the case");
+        context_.problems.add(place,
+                              "max_lsb needs every sample of case " + quoted(the_case.name) + ", the baseline at " +
+                                  where + " kept " + std::to_string(entry->kept_samples) + " of " +
+                                  std::to_string(entry->samples),
+                              "leave max_lsb out: the whole response is then compared bit for bit; or accept the run "
+                              "again with --samples " +
+                                  std::to_string(entry->samples));
         return;
     }
     auto kept = kept_codes(rule, baseline, *entry, place);

@@ -190,6 +190,11 @@ void read_document(const JsonField& top, RecordedRun& record) {
         if (!names.insert(result.name).second)
             top.at("cases").refuse("has the case '" + printable(result.name) + "' twice");
     }
+    names.clear();
+    for (const std::string& name : run.cases_planned) {
+        if (!names.insert(name).second) top.at("cases_planned").refuse("has the case '" + printable(name) + "' twice");
+    }
+    if (names.empty()) top.at("cases_planned").refuse("is empty: no run is without a case");
     if (run.cases.size() > run.cases_planned.size()) top.at("cases").refuse("has more cases than were planned");
 }
 

@@ -21,6 +21,10 @@ def bytes_below(folder):
     return {path.relative_to(folder): path.read_bytes() for path in sorted(folder.rglob("*")) if path.is_file()}
 
 
+def with_planned(text, names):
+    return json.dumps({**json.loads(text), "cases_planned": names})
+
+
 class Judge(Case):
     def captured(self, cases=NOISE + STEP, faults=(), status=0, name="run", options=(), **more):
         with self.virtual_board(*[word for fault in faults for word in ("--fault", fault)]):
@@ -218,6 +222,8 @@ class Judge(Case):
             (whole.replace('"captures/001-noise.npy"', '"/etc/passwd"'), "which is no file of this folder"),
             (whole.replace('"captures/001-noise.npy"', '"captures/../../x"'), "which is no file of this folder"),
             (whole.replace('"name": "step"', '"name": "noise"'), "has the case 'noise' twice"),
+            (with_planned(whole, ["noise", "noise"]), "cases_planned has the case 'noise' twice"),
+            (with_planned(whole, []), "cases_planned is empty: no run is without a case"),
         ):
             with self.subTest(message):
                 self.assertNotEqual(text, whole)

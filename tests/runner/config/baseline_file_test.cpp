@@ -161,7 +161,8 @@ TEST_CASE("baseline: max_lsb needs every sample", "[config]") {
     const std::vector<Code> kept(response.begin(), response.begin() + 4);
     CHECK(plan_problems(plan_text("max_lsb = 1\n"), files_with(long_baseline_text(), npy_of(kept))) ==
           at_rule("max_lsb needs every sample of case \"short\", the baseline at baseline/ kept 4 of 6",
-                  "leave max_lsb out: the whole response is then compared bit for bit; or shorten the case"));
+                  "leave max_lsb out: the whole response is then compared bit for bit; or accept the run again with "
+                  "--samples 6"));
     CHECK(plan_problems(plan_text("max_lsb = 0\n"), files_with(long_baseline_text(), npy_of(kept))).empty());
     CHECK(plan_problems(plan_text("max_lsb = 1\n"), files_with(baseline_text(), npy_of(response))).empty());
 }
