@@ -83,7 +83,7 @@ void check_discard(const Case& the_case, std::vector<Refusal>& refusals) {
 
 void check_response(const Plan& plan, const Case& the_case, const Rule& rule, std::vector<Refusal>& refusals) {
     if (plan.filter_is_unknown) return;
-    const Spectrum spectrum = the_case.stimulus->spectrum();
+    const Spectrum spectrum = measured_spectrum(the_case);
     const std::string noise = "use noise or a chirp over that band";
     if (spectrum.tones.empty() && spectrum.bands.empty()) {
         refusals.push_back(

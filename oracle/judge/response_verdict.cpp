@@ -53,14 +53,20 @@ JudgedFigure held(const Extreme& extreme, double limit_db, bool at_least, const 
 
 }  // namespace
 
+Spectrum measured_spectrum(const Case& the_case) {
+    Spectrum spectrum = the_case.stimulus->spectrum();
+    if (!spectrum.bands.empty()) spectrum.tones.clear();
+    return spectrum;
+}
+
 std::unique_ptr<ResponseMeasure> make_response_measure(const Case& the_case) {
-    const Spectrum spectrum = the_case.stimulus->spectrum();
+    const Spectrum spectrum = measured_spectrum(the_case);
     if (!spectrum.tones.empty()) return make_tone_response(spectrum.tones, judged_samples(the_case));
     return make_welch_response(response_segment_for(judged_samples(the_case)));
 }
 
 std::vector<double> answerable_hz(const ResponseBand& band, const Case& the_case, double rate_hz) {
-    const Spectrum spectrum = the_case.stimulus->spectrum();
+    const Spectrum spectrum = measured_spectrum(the_case);
     std::vector<double> found;
     for (const double tone : spectrum.tones) {
         if (within(tone * rate_hz, band)) found.push_back(tone * rate_hz);
@@ -78,7 +84,7 @@ std::vector<double> answerable_hz(const ResponseBand& band, const Case& the_case
 RuleVerdict judge_response(const ResponseRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
                            int channel, const std::vector<ResponsePoint>& points) {
     RuleVerdict verdict{asked, Verdict::pass, "design", {}, {}, std::nullopt};
-    const Spectrum spectrum = the_case.stimulus->spectrum();
+    const Spectrum spectrum = measured_spectrum(the_case);
     const FilterChain chain = chain_of(plan, the_case, channel);
     const double rate_hz = rate_hz_of(plan, the_case);
     for (const ResponseBand& band : rule.bands) {

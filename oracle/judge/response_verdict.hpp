@@ -11,7 +11,11 @@
 
 namespace halflsb {
 
-/// Tones are measured at their frequencies over all judged samples, everything else by Welch's method.
+/// What a response is measured by: the tones only where nothing continuous is beside them. Noise or a chirp answers for
+/// each bin of a band; a sine added to it would leave the rest of the band unjudged.
+Spectrum measured_spectrum(const Case& the_case);
+
+/// Tones alone are measured at their frequencies over all judged samples, everything else by Welch's method.
 std::unique_ptr<ResponseMeasure> make_response_measure(const Case& the_case);
 
 /// Frequencies in Hz at which this case can answer for the band, edges included; empty when its stimulus

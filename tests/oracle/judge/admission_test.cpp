@@ -2,6 +2,7 @@
 
 #include <catch2/catch.hpp>
 
+#include "oracle/judge/response_verdict.hpp"
 #include "tests/support/plans.hpp"
 
 using namespace halflsb;
@@ -45,6 +46,23 @@ TEST_CASE("admission: a stimulus that is silent for hours does not hold up its p
         refused(plan, "step", late, latency);  // a pass over all of it would take the better part of an hour
     REQUIRE(found.size() == 1);
     CHECK(found[0].problem.ends_with("below 130, in its first 4194304 samples"));
+}
+
+TEST_CASE("admission: a sine added to noise leaves no part of a band unjudged", "[judge]") {
+    const Plan plan = test::moving_average_plan();
+    const auto sine = std::make_shared<const std::vector<StimulusWords>>(
+        std::vector<StimulusWords>{{"sine", values({{"frequency_hz", 15.0}, {"level_ratio", 0.3}})}});
+    const ResponseBand band{10.0, 20.0, -1.0, 0.0};
+    for (const std::string shape : {"noise", "chirp"}) {
+        auto given = values({{"length_samples", std::int64_t{20000}}});
+        if (shape == "chirp")
+            given = values({{"from_hz", 5.0}, {"to_hz", 600.0}, {"length_samples", std::int64_t{20000}}});
+        const auto alone = answerable_hz(band, test::a_case(plan, shape, given, {}), 1200.0);
+        given.set("add", sine);
+        INFO(shape);
+        CHECK(alone.size() > 10);
+        CHECK(answerable_hz(band, test::a_case(plan, shape, given, {}), 1200.0) == alone);
+    }
 }
 
 TEST_CASE("admission: an implicit latency rule is never refused", "[judge]") {
