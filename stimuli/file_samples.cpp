@@ -169,8 +169,15 @@ Outcome<Placement> span_of_file(const Recipe& recipe, const ParameterValues& val
                        "Repeat it less often.");
     }
     const std::int64_t natural = at_samples + once * repeats;
+    const std::int64_t host = context.default_length_samples.value_or(natural);
+    if (natural > host && !values.has("length_samples")) {
+        return refused("file",
+                       "its " + std::to_string(natural) + " samples are more than the " + std::to_string(host) +
+                           " of the stimulus that it is added to",
+                       "Say how much of it is meant: length_samples = " + std::to_string(host) + ".");
+    }
     StimulusContext own = context;
-    own.default_length_samples = std::min(natural, context.default_length_samples.value_or(natural));
+    own.default_length_samples = natural;
     auto placement = span_of(recipe, values, own);
     if (placement && placement->length_samples > natural) {
         return refused("length_samples",

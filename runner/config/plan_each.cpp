@@ -306,12 +306,14 @@ std::optional<TomlValue> CaseExpansion::at(std::size_t index, Problems& problems
     return copy;
 }
 
-bool has_too_many(const std::vector<CaseExpansion>& cases, Problems& problems) {
+bool has_too_many(const std::vector<CaseExpansion>& cases, std::size_t common_rules, Problems& problems) {
+    // A judged rule weighs some ten values.
+    const double rule_values = 10.0 * static_cast<double>(common_rules);
     double count = 0.0, values = 0.0;
     const CaseExpansion *first_beyond = nullptr, *first_large = nullptr;
     for (const CaseExpansion& expansion : cases) {
         count += expansion.count();
-        values += expansion.value_count();
+        values += expansion.value_count() + expansion.count() * rule_values;
         if (first_beyond == nullptr && count > static_cast<double>(most_cases)) first_beyond = &expansion;
         if (first_large == nullptr && values > static_cast<double>(most_case_values)) first_large = &expansion;
     }

@@ -77,7 +77,8 @@ private:
     bool is_clean_ = true;
 };
 
-/// Reports a plan of more than most_cases cases or most_case_values values, at the case that goes beyond.
-bool has_too_many(const std::vector<CaseExpansion>& cases, Problems& problems);
+/// Reports a plan of more than most_cases cases or most_case_values values, at the case that goes beyond. Each case
+/// holds the rules for every case too, `common_rules` of them.
+bool has_too_many(const std::vector<CaseExpansion>& cases, std::size_t common_rules, Problems& problems);
 
 }  // namespace halflsb

@@ -108,7 +108,8 @@ private:
         std::vector<CaseExpansion> expansions;
         for (const TomlValue* table : top.tables("case")) expansions.emplace_back(*table, problems_);
         std::vector<ReadCase> cases;
-        if (has_too_many(expansions, problems_)) return cases;
+        const TomlEntry* common = tree_.find("rule");
+        if (has_too_many(expansions, common == nullptr ? 0 : common->value.items.size(), problems_)) return cases;
         std::map<std::string, Place> names;
         for (const CaseExpansion& expansion : expansions) {
             if (!expansion.is_clean()) continue;

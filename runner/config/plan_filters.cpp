@@ -12,6 +12,8 @@ namespace {
 
 /// The top of what a plan may say, so that a stage is not blamed for what a missing [signal] leaves open.
 constexpr int most_channels = 16;
+/// Far more than a firmware has; how long a chain remembers is then found in a moment.
+constexpr std::size_t most_stages = 32;
 
 bool is_in_time(const Recipe& recipe, const ParameterValues& values) {
     return std::any_of(recipe.parameters.begin(), recipe.parameters.end(), [&](const Parameter& parameter) {
@@ -75,6 +77,13 @@ public:
         const bool is_written = top_.entry("filter") != nullptr;
         const std::size_t before_tables = context_.problems.count();
         const auto tables = top_.tables("filter");
+        if (tables.size() > most_stages) {
+            top_.refuse(tables[most_stages]->place,
+                        "the chain has " + std::to_string(tables.size()) + " stages, the most are " +
+                            std::to_string(most_stages),
+                        "put coefficients of one kind into one stage");
+            return std::nullopt;
+        }
         for (const TomlValue* table : tables) read_stage(*table, tables.size());
         if (tables.empty() && (!is_written || context_.problems.count() == before_tables)) {
             top_.refuse(top_.place_of("filter"), "the file has no [[filter]]",
@@ -94,6 +103,10 @@ private:
             if (stage_count > 1) {
                 reader.refuse(reader.place_of("kind"), "an unknown filter beside other stages",
                               "make it the only [[filter]]: of a chain with an unknown stage nothing is known");
+            }
+            if (const TomlEntry* arithmetic = reader.entry("arithmetic")) {
+                reader.refuse(arithmetic->key_place, "the arithmetic of an unknown filter is stated",
+                              "leave it out, or say what the filter is");
             }
             reader.refuse_unknown_keys();
             read_.is_unknown = true;

@@ -80,7 +80,12 @@ std::string cut_to(const TextStyle& style, std::string_view text, std::size_t co
     const std::string_view ellipsis = style.unicode ? "…" : "...";
     const std::size_t taken = columns_of(ellipsis);
     if (columns < taken) return std::string(first_columns(text, columns));
-    return std::string(first_columns(text, columns - taken)) + std::string(ellipsis);
+    // From the middle: cases of one [case.each] differ at the end of their names.
+    const std::size_t behind = (columns - taken) / 2;
+    std::string_view end = text;
+    while (columns_of(end) > behind)
+        end.remove_prefix(first_columns(end, 1).empty() ? 1 : first_columns(end, 1).size());
+    return std::string(first_columns(text, columns - taken - behind)) + std::string(ellipsis) + std::string(end);
 }
 
 std::string padded(std::string_view text, std::size_t columns) {

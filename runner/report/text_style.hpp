@@ -24,7 +24,7 @@ std::string painted(const TextStyle& style, Ink ink, std::string_view text);
 /// ending in a line break. Line breaks in `text` stay; a word longer than a line is not broken.
 std::string wrapped(const TextStyle& style, std::string_view text, std::size_t indent);
 
-/// `text`, or as much of it as fits `columns` with an ellipsis.
+/// `text`, or its start and end with an ellipsis between, as much as fits `columns`.
 std::string cut_to(const TextStyle& style, std::string_view text, std::size_t columns);
 
 /// Filled up with blanks to `columns`.

@@ -63,6 +63,19 @@ TEST_CASE("file: it starts at at_samples, is cut at length_samples and repeats",
     CHECK(placed->spectrum().tones.empty());
 }
 
+TEST_CASE("file: added to a shorter stimulus, it is not cut without a word", "[stimuli]") {
+    const ParameterValue three = file({{1, 2, 3}});
+    const auto added = [&](Given given) {
+        return refusal("step", {{"length_samples", std::int64_t{2}}, {"add", list({words("file", given)})}});
+    };
+    CHECK(added({{"file", three}}) ==
+          "add[1].file: its 3 samples are more than the 2 of the stimulus that it is added to\n  Say how much of it is "
+          "meant: length_samples = 2.");
+    CHECK(added({{"file", three}, {"length_samples", std::int64_t{2}}}) == "accepted");
+    CHECK(refusal("step", {{"length_samples", std::int64_t{3}}, {"add", list({words("file", {{"file", three}})})}}) ==
+          "accepted");
+}
+
 TEST_CASE("file: a column by its name, or by its number", "[stimuli]") {
     const auto two = file({{1, 1}, {2, 2}}, true, {"gross", "2"});
     const auto chosen = [&](const char* column) {

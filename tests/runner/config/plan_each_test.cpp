@@ -284,6 +284,16 @@ TEST_CASE("each: 10,000 cases are taken, more are refused before anything is exp
     CHECK(problems_with(vast).starts_with("plan.toml:17:1: the plan has more than 1e308 cases, the most are 10000\n"));
 }
 
+TEST_CASE("each: rules for every case count in each of them", "[config]") {
+    std::string rules;
+    for (int i = 0; i < 600; ++i) rules += "[[rule]]\nkind = \"error\"\nmax_lsb = 1\n";
+    std::string each =
+        "[[case]]\nname = \"n\"\nstimulus = { shape = \"step\", length_samples = 5 }\n[case.each]\nk = [";
+    for (int i = 0; i < 1000; ++i) each += "{ name = \"" + std::to_string(i) + "\" },";
+    CHECK(plan_problems(signal_and_filter.substr(0, signal_and_filter.find("[[case]]")) + rules + each + "]\n")
+              .find("values, the most are 5000000\n") != std::string::npos);
+}
+
 TEST_CASE("each: long lists are not repeated without end", "[config]") {
     std::string long_list = "tones_hz = [";
     for (int i = 0; i < 60000; ++i) long_list += "1,";

@@ -96,6 +96,25 @@ TEST_CASE("plan: [arithmetic] is the default of every stage, [filter.arithmetic]
     CHECK(plan.filter[1].arithmetic.accumulator_bits == 32);
 }
 
+TEST_CASE("plan: a chain has at most 32 stages", "[config]") {
+    const auto plan_with = [](int more) {
+        std::string stages;
+        for (int i = 0; i < more; ++i) stages += "[[filter]]\nkind = \"moving-average\"\npoints = 2\n";
+        return with(good_plan, fir, fir + stages);
+    };
+    CHECK(plan_problems(plan_with(31)).empty());
+    CHECK(plan_problems(plan_with(32)) == message(plan_with(32), 106, "[[filter]]",
+                                                  "the chain has 33 stages, the most are 32",
+                                                  "put coefficients of one kind into one stage"));
+}
+
+TEST_CASE("plan: an unknown filter has no stated arithmetic", "[config]") {
+    const std::string text =
+        with(unknown_plan(), "kind = \"unknown\"\n", "kind = \"unknown\"\n[filter.arithmetic]\nrounding = \"floor\"\n");
+    CHECK(plan_problems(text) == message(text, 12, "arithmetic]", "the arithmetic of an unknown filter is stated",
+                                         "leave it out, or say what the filter is"));
+}
+
 TEST_CASE("plan: words between stages count in the signal's kind of value", "[config]") {
     const auto plan_with = [](const std::string& word) {
         return with(good_plan, fir, std::string(fir) + "[filter.arithmetic]\nstage_format = \"" + word + "\"\n");
