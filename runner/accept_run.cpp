@@ -130,8 +130,10 @@ Outcome<AcceptedCase> compare(CaptureFile& capture, const Plan& plan, const Base
         for (std::size_t i = 0; i < common; ++i) {
             if ((*blocks)[i] == before.block_sha256[i]) continue;
             const std::int64_t from = static_cast<std::int64_t>(i) * before.block_samples;
-            accepted.difference = "first different sample between " + count_text(from) + " and " +
-                                  count_text(std::min(from + before.block_samples, now.samples) - 1);
+            const std::int64_t last = std::min(from + before.block_samples, now.samples) - 1;
+            accepted.difference =
+                from == last ? "first different sample " + count_text(from)
+                             : "first different sample between " + count_text(from) + " and " + count_text(last);
             break;
         }
     }
@@ -281,9 +283,9 @@ Outcome<AcceptedBaseline> accept_baseline(const RecordedRun& record, const Plan&
         for (const BaselineCase& one : before->cases) known[one.name] = &one;
         if (!stays.empty() && (before->output != content.output || before->channels != content.channels)) {
             return Error{ErrorKind::input, *folder + "/" + baseline_file_name,
-                         "it is of " + printable(before->output) + " in " + std::to_string(before->channels) +
-                             " channels, the run of " + content.output + " in " + std::to_string(content.channels) +
-                             ", and it has cases that are not in this run",
+                         "it is of " + printable(before->output) + " in " +
+                             counted(before->channels, "channel", "channels") + ", the run of " + content.output +
+                             " in " + std::to_string(content.channels) + ", and it has cases that are not in this run",
                          "remove that folder to begin anew, or name another baseline in the plan"};
         }
     }

@@ -156,8 +156,8 @@ private:
         if (cells_.size() != columns_.size()) {
             const std::size_t last = std::min(cells_.size(), columns_.size() + 1) - 1;
             refuse(place_of(number, line, cells_[last].offset),
-                   std::to_string(cells_.size()) + " columns in this line, " + std::to_string(columns_.size()) +
-                       " in those above",
+                   std::to_string(cells_.size()) + (cells_.size() == 1 ? " column" : " columns") + " in this line, " +
+                       std::to_string(columns_.size()) + " in those above",
                    how);
             return;
         }

@@ -40,18 +40,18 @@ std::string wanted_text(ParameterType type) {
         case ParameterType::choice:
             return "a string";
         case ParameterType::reals:
-            return "an array of numbers";
+            return "a list of numbers";
         case ParameterType::sections:
-            return "an array of arrays of numbers";
+            return "a list of lists of numbers";
         case ParameterType::bands:
-            return "an array of tables";
+            return "a list of tables";
         case ParameterType::file:
         case ParameterType::signal_file:
             return "the name of a file";
         case ParameterType::integers:
-            return "an array of whole numbers";
+            return "a list of whole numbers";
         case ParameterType::stimuli:
-            return "an array of tables";
+            return "a list of tables";
     }
     return {};
 }
@@ -187,7 +187,7 @@ std::optional<std::vector<double>> reals_of(const Parameter& parameter, const To
                                             ReadContext& context) {
     if (value.kind != TomlValue::Kind::array) {
         refuse_type(parameter, value, name,
-                    parameter.type == ParameterType::integers ? wanted_text(parameter.type) : "an array of numbers",
+                    parameter.type == ParameterType::integers ? wanted_text(parameter.type) : "a list of numbers",
                     context);
         return std::nullopt;
     }
