@@ -162,9 +162,9 @@ Outcome<AcceptedBaseline> accept_baseline(const RecordedRun& record, const Plan&
         for (const BaselineCase& one : before->cases) known[one.name] = &one;
         if (!stays.empty() && (before->output != content.output || before->channels != content.channels)) {
             return Error{ErrorKind::input, *folder + "/" + baseline_file_name,
-                         "it is of " + printable(before->output) + " in " + std::to_string(before->channels) +
-                             " channels, the run of " + content.output + " in " + std::to_string(content.channels) +
-                             ", and it has cases that are not in this run",
+                         "it is of " + printable(before->output) + " in " +
+                             counted(before->channels, "channel", "channels") + ", the run of " + content.output +
+                             " in " + std::to_string(content.channels) + ", and it has cases that are not in this run",
                          "remove that folder to begin anew, or name another baseline in the plan"};
         }
     }

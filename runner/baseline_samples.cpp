@@ -117,8 +117,10 @@ Outcome<AcceptedCase> compare_with_before(CaptureFile& capture, const Plan& plan
         for (std::size_t i = 0; i < common; ++i) {
             if ((*blocks)[i] == before.block_sha256[i]) continue;
             const std::int64_t from = static_cast<std::int64_t>(i) * before.block_samples;
-            accepted.difference = "first different sample between " + count_text(from) + " and " +
-                                  count_text(std::min(from + before.block_samples, now.samples) - 1);
+            const std::int64_t last = std::min(from + before.block_samples, now.samples) - 1;
+            accepted.difference =
+                from == last ? "first different sample " + count_text(from)
+                             : "first different sample between " + count_text(from) + " and " + count_text(last);
             break;
         }
     }

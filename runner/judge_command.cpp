@@ -38,7 +38,7 @@ Outcome<Question> read_question(const RecordedRun& record, const Options& option
     } else {
         if (options.root) {
             return Error{ErrorKind::usage, "--root", "the recorded plan finds its files in the folder of the run",
-                         "leave it away, or give a PLAN"};
+                         "leave it out, or give a PLAN"};
         }
         auto plan = read_recorded_plan(record, desk.files, problems);
         if (!plan) return plan.error();

@@ -63,7 +63,7 @@ StimulusOutcome make_burst(const Recipe& recipe, const ParameterValues& values, 
                        std::to_string(repeats) + (repeats == 1 ? " burst takes " : " bursts take ") +
                            number_text(static_cast<double>(needed)) + " samples, from at_samples on there are " +
                            std::to_string(placement->own_samples()),
-                       "Make the stimulus longer, or the bursts shorter or fewer.");
+                       "make the stimulus longer, or the bursts shorter or fewer");
     }
     if (values.has("repeats")) gate.end = static_cast<std::int64_t>(needed);
     return std::unique_ptr<const Stimulus>(std::make_unique<Burst>(*placement, *tone, gate));

@@ -33,7 +33,7 @@ const std::vector<Recipe>& stimulus_recipes() {
 StimulusOutcome make_stimulus(std::string_view shape, const ParameterValues& values, const StimulusContext& context) {
     if (!(context.rate_hz > 0.0 && std::isfinite(context.rate_hz))) {
         return refused("rate_hz", number_text(context.rate_hz) + " Hz is no sample rate",
-                       "Give a finite rate above 0 Hz.");
+                       "give a finite rate above 0 Hz");
     }
     const Recipe* recipe = find_recipe(stimulus_recipes(), shape);
     if (recipe == nullptr) return unknown_shape_error(shape);

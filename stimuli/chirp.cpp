@@ -100,7 +100,7 @@ StimulusOutcome make_chirp(const Recipe& recipe, const ParameterValues& values, 
     if (auto error = frequency_error("to_hz", to_hz, context.rate_hz)) return *error;
     if (from_hz == to_hz) {
         return refused("to_hz", number_text(to_hz) + " Hz equals from_hz, so nothing sweeps",
-                       "Give another frequency, or use shape = \"sine\".");
+                       "give another frequency, or use shape = \"sine\"");
     }
     const Spectrum band{
         .bands = {{std::min(from_hz, to_hz) / context.rate_hz, std::max(from_hz, to_hz) / context.rate_hz}}};

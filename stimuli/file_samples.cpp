@@ -54,9 +54,9 @@ std::string columns_text(const SignalFile& file) {
 /// A name counts before a number, so that a column whose heading is a number is found.
 Outcome<std::size_t> column_of(const Recipe& recipe, const ParameterValues& values, const SignalFile& file) {
     if (file.columns.empty()) {
-        return refused("file", "\"" + file.path + "\" holds no samples", "Name a file with at least one.");
+        return refused("file", "\"" + file.path + "\" holds no samples", "name a file with at least one");
     }
-    const std::string one_of = "Give column = one of: " + columns_text(file) + ", or its number from 1, in quotes.";
+    const std::string one_of = "give column = one of: " + columns_text(file) + ", or its number from 1, in quotes";
     const auto column = values.text(recipe, "column");
     if (!column) {
         if (file.columns.size() == 1) return std::size_t{0};
@@ -99,13 +99,13 @@ Outcome<Scale> scale_of(Holds holds, const StimulusContext& context) {
     if (holds == Holds::unit) {
         if (context.full_scale_unit) return Scale{0.0, *context.full_scale_unit};
         return refused("holds", "nothing says what full scale of the input means in a unit",
-                       "Say so in [signal], or let the file hold ratios of full scale.");
+                       "say so in [signal], or let the file hold ratios of full scale");
     }
     if (input.has_lsb()) {
         return Scale{static_cast<double>(zero_code(input)), std::ldexp(1.0, input.word_bits - 1)};
     }
     return refused("holds", "format " + std::string(input.name) + " has no codes that count",
-                   "Let the file hold ratios of full scale, holds = \"ratio\".");
+                   "let the file hold ratios of full scale, holds = \"ratio\"");
 }
 
 /// The first sample that cannot be sent.
@@ -121,19 +121,19 @@ std::optional<Error> sample_error(const SignalFile& file, std::size_t column, Ho
                                number_text(sample) + problem,
                            std::move(remedy));
         };
-        if (!std::isfinite(sample)) return refuse("", "Only finite numbers can be sent.");
+        if (!std::isfinite(sample)) return refuse("", "only finite numbers can be sent");
         if (holds == Holds::codes) {
             if (std::floor(sample) != sample) {
                 return refuse(", and a code is a whole number",
-                              "Say what the file holds: holds = \"ratio\" or \"unit\".");
+                              "say what the file holds: holds = \"ratio\" or \"unit\"");
             }
             if (sample < lowest || sample > highest) {
                 return refuse(", which is no code of " + std::string(input.name),
-                              "Its codes are " + number_text(lowest) + " to " + number_text(highest) + ".");
+                              "its codes are " + number_text(lowest) + " to " + number_text(highest));
             }
         } else if (!(std::abs(sample / scale.full_scale) <= 1.0)) {
             return refuse(", beyond full scale, " + number_text(std::abs(scale.full_scale)),
-                          "Say what the file holds, or scale it.");
+                          "say what the file holds, or scale it");
         }
     }
     return std::nullopt;
@@ -144,7 +144,7 @@ std::optional<Error> rate_error(const Recipe& recipe, const ParameterValues& val
     const auto differs = [&](std::string_view place, const std::string& who, double recorded_hz) {
         return refused(place,
                        who + " " + number_text(recorded_hz) + " Hz, the signal has " + number_text(rate_hz) + " Hz",
-                       "Resample the file, or correct the rate.");
+                       "resample the file, or correct the rate");
     };
     if (const auto recorded_hz = values.number(recipe, "recorded_rate_hz"); recorded_hz && *recorded_hz != rate_hz) {
         return differs("recorded_rate_hz", "it was recorded at", *recorded_hz);
@@ -166,7 +166,7 @@ Outcome<Placement> span_of_file(const Recipe& recipe, const ParameterValues& val
                        std::to_string(repeats) + " times " + std::to_string(once) + " samples, from " +
                            std::to_string(at_samples) + " on, are more than the longest stimulus, " +
                            std::to_string(longest_stimulus_samples),
-                       "Repeat it less often.");
+                       "repeat it less often");
     }
     const std::int64_t natural = at_samples + once * repeats;
     const std::int64_t host = context.default_length_samples.value_or(natural);
@@ -174,7 +174,7 @@ Outcome<Placement> span_of_file(const Recipe& recipe, const ParameterValues& val
         return refused("file",
                        "its " + std::to_string(natural) + " samples are more than the " + std::to_string(host) +
                            " of the stimulus that it is added to",
-                       "Say how much of it is meant: length_samples = " + std::to_string(host) + ".");
+                       "say how much of it is meant: length_samples = " + std::to_string(host));
     }
     StimulusContext own = context;
     own.default_length_samples = natural;
@@ -183,7 +183,7 @@ Outcome<Placement> span_of_file(const Recipe& recipe, const ParameterValues& val
         return refused("length_samples",
                        std::to_string(placement->length_samples) + " samples are more than the file gives, " +
                            std::to_string(natural),
-                       "Give at most " + std::to_string(natural) + ", or a larger repeat.");
+                       "give at most " + std::to_string(natural) + ", or a larger repeat");
     }
     return placement;
 }
@@ -193,7 +193,7 @@ StimulusOutcome make_file(const Recipe& recipe, const ParameterValues& values, c
     const auto column = column_of(recipe, values, *file);
     if (!column) return column.error();
     if (file->columns[*column].empty()) {
-        return refused("file", "\"" + file->path + "\" holds no samples", "Name a file with at least one.");
+        return refused("file", "\"" + file->path + "\" holds no samples", "name a file with at least one");
     }
     if (auto error = rate_error(recipe, values, *file, context.rate_hz)) return *error;
     const Holds holds = meaning_of(recipe, values, *file, context.input);

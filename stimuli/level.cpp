@@ -33,7 +33,7 @@ Outcome<double> ratio_of_codes(const LevelNames& names, std::int64_t codes, bool
                                const StimulusContext& context) {
     if (!context.input.has_lsb()) {
         return refused(names.codes, "format " + std::string(context.input.name) + " has no LSB",
-                       "Give " + std::string(names.ratio) + " instead.");
+                       "give " + std::string(names.ratio) + " instead");
     }
     const std::int64_t end = std::int64_t{1} << (context.input.word_bits - 1);
     if (codes < -end || codes >= end) {
@@ -43,7 +43,7 @@ Outcome<double> ratio_of_codes(const LevelNames& names, std::int64_t codes, bool
             names.codes,
             std::to_string(codes) + (is_offset ? " is no distance from the mid-code of " : " is not a code of ") +
                 std::string(context.input.name),
-            "Give a whole number from " + std::to_string(positive ? 1 : -end) + " to " + std::to_string(end - 1) + ".");
+            "give a whole number from " + std::to_string(positive ? 1 : -end) + " to " + std::to_string(end - 1));
     }
     return static_cast<double>(codes) / static_cast<double>(end);
 }
@@ -51,13 +51,13 @@ Outcome<double> ratio_of_codes(const LevelNames& names, std::int64_t codes, bool
 Outcome<double> ratio_of_unit(const LevelNames& names, double level, const StimulusContext& context) {
     if (!context.full_scale_unit) {
         return refused(names.unit, "nothing says what full scale of the input means in a unit",
-                       "Say so in [signal], or give " + std::string(names.ratio) + " instead.");
+                       "say so in [signal], or give " + std::string(names.ratio) + " instead");
     }
     const double full_scale = *context.full_scale_unit;
     const double ratio = level / full_scale;
     if (!(std::abs(ratio) <= 1.0)) {
         return refused(names.unit, number_text(level) + " is beyond full scale, " + number_text(full_scale),
-                       "Give at most " + number_text(std::abs(full_scale)) + " in size.");
+                       "give at most " + number_text(std::abs(full_scale)) + " in size");
     }
     return ratio;
 }
@@ -98,7 +98,7 @@ Outcome<double> level_of(std::string_view name, const Recipe& recipe, const Para
     std::string_view given;
     for (const std::string_view each : {names.ratio, names.codes, names.unit}) {
         if (!values.has(each)) continue;
-        if (!given.empty()) return refused(each, std::string(given) + " is given too", "Keep one of the two.");
+        if (!given.empty()) return refused(each, std::string(given) + " is given too", "keep one of the two");
         given = each;
     }
     if (given == names.codes) {
@@ -109,9 +109,10 @@ Outcome<double> level_of(std::string_view name, const Recipe& recipe, const Para
     if (given == names.unit) return ratio_of_unit(names, values.number(recipe, given).value_or(0.0), context);
     const auto ratio = values.number(recipe, names.ratio);
     if (!ratio) {
-        return refused(names.ratio, "is missing, and \"" + std::string(recipe.name) + "\" needs it",
-                       "Give " + std::string(names.ratio) + ", " + std::string(names.codes) + " or " +
-                           std::string(names.unit) + ".");
+        return refused(names.ratio,
+                       "\"" + std::string(recipe.name) + "\" needs " + std::string(names.ratio) + ", " +
+                           std::string(names.codes) + " or " + std::string(names.unit),
+                       "give one of them");
     }
     return *ratio;
 }

@@ -40,7 +40,7 @@ public:
         if (!count_) return broken(offset_, "the dictionary has no 'shape'");
         if (is_fortran_ && channels_ != 1) {
             return broken(offset_, "several channels in Fortran order",
-                          "Save the array in C order, (samples, channels).");
+                          "save the array in C order, (samples, channels)");
         }
         return NpyHeader{*type_, *count_, channels_, 0};
     }
@@ -62,14 +62,14 @@ private:
         skip_blanks();
         const std::size_t place = offset_ + at_;
         if (at_ < text_.size() && text_[at_] == '[') {
-            return broken(place, "elements are records", "Save each column as an array of its own.");
+            return broken(place, "elements are records", "save each column as an array of its own");
         }
         auto text = quoted("a type in quotes");
         if (!text) return text.error();
         const auto found = std::find(descriptors.begin(), descriptors.end(), *text);
         if (found == descriptors.end()) {
             return broken(place, "elements of type '" + std::string(*text) + "' are not taken",
-                          "Save as one of |i1, |u1, <u2, <i2, <i4, <i8, <f4, <f8.");
+                          "save as one of |i1, |u1, <u2, <i2, <i4, <i8, <f4, <f8");
         }
         type_ = static_cast<NpyType>(found - descriptors.begin());
         return {};
@@ -104,7 +104,7 @@ private:
         if (dimensions == 1 && !comma) return expected("',' after the only length");
         if (dimensions != 1 && dimensions != 2) {
             return broken(place, "the array has " + std::to_string(dimensions) + " dimensions",
-                          "Save one channel as a one-dimensional array, several as (samples, channels).");
+                          "save one channel as a one-dimensional array, several as (samples, channels)");
         }
         count_ = lengths[0];
         channels_ = lengths[1];
@@ -213,12 +213,12 @@ NpyHeaderBytes npy_header(NpyType type, std::int64_t count, int channels) {
 Outcome<NpyHeader> parse_npy_header(std::span<const std::byte> file) {
     const auto truncated = [&](std::size_t needed) {
         return broken(file.size(), "the file ends inside its NPY header of " + std::to_string(needed) + " bytes",
-                      "The file is cut off; write it again.");
+                      "it is cut off; write it again");
     };
     const auto byte_at = [&](std::size_t at) { return std::to_integer<std::size_t>(file[at]); };
     for (std::size_t i = 0; i < std::min(magic.size(), file.size()); ++i) {
         if (file[i] != static_cast<std::byte>(magic[i])) {
-            return broken(i, "this is no NPY file", "Save the array with NumPy's save().");
+            return broken(i, "this is no NPY file", "save the array with NumPy's save()");
         }
     }
     constexpr std::size_t shortest_prefix = magic.size() + version_bytes + 2;
@@ -227,7 +227,7 @@ Outcome<NpyHeader> parse_npy_header(std::span<const std::byte> file) {
     const std::size_t minor = byte_at(7);
     if ((major != 1 && major != 2) || minor != 0) {
         return broken(6, "NPY version " + std::to_string(major) + "." + std::to_string(minor) + " is not taken",
-                      "Save as version 1.0 or 2.0.");
+                      "save as version 1.0 or 2.0");
     }
     const std::size_t length_bytes = major == 1 ? 2 : 4;
     const std::size_t offset = magic.size() + version_bytes + length_bytes;
@@ -236,7 +236,7 @@ Outcome<NpyHeader> parse_npy_header(std::span<const std::byte> file) {
     for (std::size_t k = length_bytes; k-- > 0;) length = length << 8 | byte_at(8 + k);
     if (offset + length > npy_longest_header_bytes) {
         return broken(8, "a dictionary of " + std::to_string(length) + " bytes is too long",
-                      "Ours need 118 bytes; the file is damaged, or no plain array.");
+                      "ours need 118 bytes; the file is damaged, or no plain array");
     }
     if (file.size() < offset + length) return truncated(offset + length);
     std::string text(length, ' ');

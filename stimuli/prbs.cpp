@@ -110,12 +110,12 @@ StimulusOutcome make_prbs(const Recipe& recipe, const ParameterValues& values, c
             return refused(
                 "register_seed",
                 std::to_string(start) + " needs more than the " + std::to_string(order) + " stages of the register",
-                "Give a whole number from 1 to " + std::to_string(largest) + ".");
+                "give a whole number from 1 to " + std::to_string(largest));
         }
         return std::unique_ptr<const Stimulus>(
             std::make_unique<Prbs>(*placement, polynomial, static_cast<Register>(start)));
     }
-    return refused("order", std::to_string(order) + " is not an order of ITU-T O.150", "Give 9, 11, 15, 20, 23 or 31.");
+    return refused("order", std::to_string(order) + " is not an order of ITU-T O.150", "give 9, 11, 15, 20, 23 or 31");
 }
 
 }  // namespace

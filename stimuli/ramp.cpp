@@ -91,11 +91,11 @@ StimulusOutcome make_ramp(const Recipe& recipe, const ParameterValues& values, c
                        : values.has("to_unit") ? "to_unit"
                                                : "to_ratio",
                        "the ramp ends where it begins, at " + number_text(*to) + " of full scale",
-                       "Give another end, or use shape = \"step\".");
+                       "give another end, or use shape = \"step\"");
     }
     if (placement->own_samples() < 2) {
         return refused("length_samples", "a ramp needs 2 samples, from at_samples on there is 1",
-                       "Make it longer, or start earlier.");
+                       "make it longer, or start earlier");
     }
     return std::unique_ptr<const Stimulus>(std::make_unique<Ramp>(*placement, *from, *to));
 }

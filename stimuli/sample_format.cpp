@@ -82,8 +82,8 @@ Outcome<SampleFormat> with_layout(SampleFormat format, Justification justificati
         return Error{ErrorKind::input, "justification", std::move(problem), std::move(remedy)};
     };
     if (justification == Justification::left && container_bits == format.word_bits) {
-        return refuse("there is no left in " + std::string(format.name) + ": it fills its " +
-                          std::to_string(format.word_bytes()) + " bytes",
+        return refuse(std::string(format.name) + " has no room to the left: it fills its " +
+                          std::to_string(format.word_bytes()) + (format.word_bytes() == 1 ? " byte" : " bytes"),
                       "leave it out; only u12 and i24 have spare bits");
     }
     if (justification == Justification::packed && format.word_bytes() != 3) {

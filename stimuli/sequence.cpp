@@ -76,7 +76,7 @@ StimulusOutcome make_sequence(const Recipe& recipe, const ParameterValues& value
         return refused(repeats > 1 ? "repeat" : "parts",
                        std::to_string(repeats) + " times " + std::to_string(round_samples) +
                            " samples are more than the longest stimulus, " + std::to_string(longest_stimulus_samples),
-                       "Make the parts shorter, or repeat them less often.");
+                       "make the parts shorter, or repeat them less often");
     }
     return std::unique_ptr<const Stimulus>(std::make_unique<Sequence>(std::move(parts), repeats));
 }

@@ -38,7 +38,7 @@ Outcome<Placement> span_of(const Recipe& recipe, const ParameterValues& values, 
     const auto length = values.integer(recipe, "length_samples");
     if (!length && !context.default_length_samples) {
         return refused("length_samples", "is missing, and \"" + std::string(recipe.name) + "\" needs it",
-                       "Give a whole number.");
+                       "give a whole number");
     }
     placement.length_samples = length ? *length : *context.default_length_samples;
     placement.at_samples = values.integer(recipe, "at_samples").value_or(0);
@@ -46,7 +46,7 @@ Outcome<Placement> span_of(const Recipe& recipe, const ParameterValues& values, 
         return refused("at_samples",
                        std::to_string(placement.at_samples) + " is not below length_samples = " +
                            std::to_string(placement.length_samples) + ", so nothing would happen",
-                       "Start earlier, or make the stimulus longer.");
+                       "start earlier, or make the stimulus longer");
     }
     return placement;
 }
@@ -110,13 +110,13 @@ std::optional<Error> frequency_error(std::string_view parameter, double frequenc
     // Written so that a NaN is refused too.
     if (!(frequency_hz > 0.0)) {
         return refused(parameter, number_text(frequency_hz) + " Hz is not above 0 Hz",
-                       "Give a frequency above 0 Hz and not above Nyquist, " + number_text(nyquist_hz) + " Hz.");
+                       "give a frequency above 0 Hz and not above Nyquist, " + number_text(nyquist_hz) + " Hz");
     }
     if (!(frequency_hz <= nyquist_hz)) {
         return refused(parameter,
                        number_text(frequency_hz) + " Hz is above Nyquist, " + number_text(nyquist_hz) +
                            " Hz at rate_hz = " + number_text(rate_hz),
-                       "Give a frequency not above Nyquist, or correct rate_hz.");
+                       "give a frequency not above Nyquist, or correct rate_hz");
     }
     return std::nullopt;
 }

@@ -75,7 +75,7 @@ StimulusOutcome make_square(const Recipe& recipe, const ParameterValues& values,
     if (!placement) return placement.error();
     const bool in_samples = values.has("period_samples");
     if (in_samples && values.has("frequency_hz")) {
-        return refused("period_samples", "frequency_hz is given too", "Keep one of the two.");
+        return refused("period_samples", "frequency_hz is given too", "keep one of the two");
     }
     Cycle cycle;
     double period_samples = 0.0;
@@ -86,8 +86,7 @@ StimulusOutcome make_square(const Recipe& recipe, const ParameterValues& values,
     } else {
         const auto frequency_hz = values.number(recipe, "frequency_hz");
         if (!frequency_hz) {
-            return refused("frequency_hz", "is missing, and \"square\" needs it",
-                           "Give frequency_hz or period_samples.");
+            return refused("frequency_hz", "\"square\" needs frequency_hz or period_samples", "give one of the two");
         }
         if (auto error = frequency_error("frequency_hz", *frequency_hz, context.rate_hz)) return *error;
         period_samples = context.rate_hz / *frequency_hz;
@@ -95,7 +94,7 @@ StimulusOutcome make_square(const Recipe& recipe, const ParameterValues& values,
             return refused("frequency_hz",
                            number_text(*frequency_hz) + " Hz has a period of " + number_text(period_samples) +
                                " samples, longer than any stimulus",
-                           "Give a higher frequency, or use shape = \"step\".");
+                           "give a higher frequency, or use shape = \"step\"");
         }
         cycle = cycle_of(*frequency_hz, context.rate_hz);
     }
@@ -106,7 +105,7 @@ StimulusOutcome make_square(const Recipe& recipe, const ParameterValues& values,
         return refused("duty",
                        "with " + number_text(duty) + " of a period of " + number_text(period_samples) +
                            " samples one of the levels lasts less than a sample",
-                       "Give a duty nearer to 0.5, or a longer period.");
+                       "give a duty nearer to 0.5, or a longer period");
     }
     return std::unique_ptr<const Stimulus>(std::make_unique<Square>(*placement, fine(cycle), duty));
 }

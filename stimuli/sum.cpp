@@ -100,7 +100,7 @@ StimulusOutcome make_sum(std::unique_ptr<const Stimulus> base, const std::vector
                           refused(added[i].values.has("parts") ? "parts" : "length_samples",
                                   std::to_string(length) + " samples are longer than the " + std::to_string(longest) +
                                       " that they are added to",
-                                  "Give at most " + std::to_string(longest) + "."));
+                                  "give at most " + std::to_string(longest)));
         }
         summands.push_back(std::move(*summand));
     }

@@ -78,7 +78,7 @@ StimulusOutcome make_multitone(const Recipe& recipe, const ParameterValues& valu
     const std::vector<double> frequencies_hz = values.numbers("frequencies_hz");
     if (frequencies_hz.size() > most_tones) {
         return refused("frequencies_hz", std::to_string(frequencies_hz.size()) + " tones are too many",
-                       "Give at most " + std::to_string(most_tones) + ".");
+                       "give at most " + std::to_string(most_tones));
     }
     Spectrum spectrum;
     std::vector<Tone> tones;
@@ -92,7 +92,7 @@ StimulusOutcome make_multitone(const Recipe& recipe, const ParameterValues& valu
     std::vector<double> sorted_hz = frequencies_hz;
     std::sort(sorted_hz.begin(), sorted_hz.end());
     if (const auto twice = std::adjacent_find(sorted_hz.begin(), sorted_hz.end()); twice != sorted_hz.end()) {
-        return refused("frequencies_hz", number_text(*twice) + " Hz stands there twice", "Give each frequency once.");
+        return refused("frequencies_hz", number_text(*twice) + " Hz is there twice", "give each frequency once");
     }
     std::sort(spectrum.tones.begin(), spectrum.tones.end());
     return std::unique_ptr<const Stimulus>(
@@ -132,9 +132,9 @@ Outcome<Tone> tone_from(const Recipe& recipe, const ParameterValues& values, con
     if (phase_turns < 0.0) start = 0 - start;
     if (frequency_hz == context.rate_hz / 2.0 && sine_of_turns(start) == 0.0) {
         return refused("phase_turns",
-                       number_text(phase_turns) + " makes a sine at Nyquist, " + number_text(frequency_hz) +
-                           " Hz, zero in every sample",
-                       "Give phase_turns = 0.25, or a lower frequency.");
+                       "a sine of " + number_text(frequency_hz) +
+                           " Hz, Nyquist, with phase_turns = " + number_text(phase_turns) + " is zero in every sample",
+                       "give phase_turns = 0.25, or a lower frequency");
     }
     return tone_of(frequency_hz, context.rate_hz, start);
 }

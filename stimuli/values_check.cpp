@@ -28,14 +28,14 @@ std::string_view type_text(ParameterType type) {
         case ParameterType::reals:
         case ParameterType::file:
         case ParameterType::integers:
-            return "an array of numbers";
+            return "a list of numbers";
         case ParameterType::signal_file:
             return "the samples of a file";
         case ParameterType::stimuli:
-            return "an array of stimuli";
+            return "a list of stimuli";
         case ParameterType::sections:
         case ParameterType::bands:
-            return "an array of arrays of numbers";
+            return "a list of lists of numbers";
     }
     return "something else";
 }
@@ -72,33 +72,32 @@ bool type_fits(ParameterType type, const ParameterValue& value) {
 }
 
 std::optional<Error> number_misfit(const Parameter& parameter, double number) {
-    if (!std::isfinite(number))
-        return refused(parameter.name, number_text(number) + " is not finite", "Give a number.");
+    if (!std::isfinite(number)) return refused(parameter.name, number_text(number) + " is not finite", "give a number");
     const std::string unit = parameter.unit.empty() ? "" : " " + std::string(parameter.unit);
     if (parameter.above_minimum && number <= parameter.minimum) {
         return refused(parameter.name,
                        number_text(number) + unit + " is not above " + number_text(parameter.minimum) + unit,
-                       "Give more than " + number_text(parameter.minimum) + ".");
+                       "give more than " + number_text(parameter.minimum));
     }
     if (number < parameter.minimum) {
         return refused(parameter.name,
                        number_text(number) + unit + " is below the least, " + number_text(parameter.minimum) + unit,
-                       "Give " + number_text(parameter.minimum) + " or more.");
+                       "give " + number_text(parameter.minimum) + " or more");
     }
     if (number > parameter.maximum) {
         return refused(parameter.name,
                        number_text(number) + unit + " is above the largest, " + number_text(parameter.maximum) + unit,
-                       "Give " + number_text(parameter.maximum) + " or less.");
+                       "give " + number_text(parameter.maximum) + " or less");
     }
     return std::nullopt;
 }
 
 std::optional<Error> numbers_misfit(const Parameter& parameter, const std::vector<double>& numbers) {
-    if (numbers.empty()) return refused(parameter.name, "the array is empty", "Give at least one number.");
+    if (numbers.empty()) return refused(parameter.name, "the list is empty", "give at least one number");
     for (const double number : numbers) {
         if (auto error = number_misfit(parameter, number)) return error;
         if (parameter.type == ParameterType::integers && std::floor(number) != number) {
-            return refused(parameter.name, number_text(number) + " is no whole number", "Give whole numbers.");
+            return refused(parameter.name, number_text(number) + " is no whole number", "give whole numbers");
         }
     }
     return std::nullopt;
@@ -114,7 +113,7 @@ std::optional<Error> value_misfit(const Parameter& parameter, const ParameterVal
     if (const auto* real = std::get_if<double>(&value)) return number_misfit(parameter, *real);
     if (const auto* list = std::get_if<std::vector<double>>(&value)) return numbers_misfit(parameter, *list);
     if (const auto* rows = std::get_if<std::vector<std::vector<double>>>(&value)) {
-        if (rows->empty()) return refused(parameter.name, "the array is empty", "Give at least one row.");
+        if (rows->empty()) return refused(parameter.name, "the list is empty", "give at least one row");
         for (const auto& row : *rows) {
             if (auto error = numbers_misfit(parameter, row)) return error;
         }
@@ -124,7 +123,7 @@ std::optional<Error> value_misfit(const Parameter& parameter, const ParameterVal
     const auto& text = *std::get_if<std::string>(&value);
     const auto& choices = parameter.choices;
     if (parameter.type == ParameterType::choice && std::find(choices.begin(), choices.end(), text) == choices.end()) {
-        return refused(parameter.name, "\"" + text + "\" is not a choice", "Choices: " + listed(choices) + ".");
+        return refused(parameter.name, "\"" + text + "\" is not a choice", "choices: " + listed(choices));
     }
     return std::nullopt;
 }
@@ -139,7 +138,7 @@ public:
                 std::vector<std::string_view> known;
                 for (const Parameter& each : recipe.parameters) known.push_back(each.name);
                 return refused(name, "\"" + std::string(recipe.name) + "\" has no such parameter",
-                               "Parameters: " + listed(known) + ".");
+                               "parameters: " + listed(known));
             }
             if (auto error = value_misfit(*parameter, value)) return error;
             if (parameter->type == ParameterType::stimuli) {
@@ -150,7 +149,7 @@ public:
             const bool needed = parameter.required && (needs_length || parameter.name != "length_samples");
             if (needed && !values.has(parameter.name)) {
                 return refused(parameter.name, "is missing, and \"" + std::string(recipe.name) + "\" needs it",
-                               "Give " + std::string(type_text(parameter.type)) + ".");
+                               "give " + std::string(type_text(parameter.type)));
             }
         }
         return std::nullopt;
@@ -159,16 +158,16 @@ public:
 private:
     std::optional<Error> list_misfit(const Parameter& parameter, const ParameterValue& value, int depth) {
         const auto& list = **std::get_if<std::shared_ptr<const std::vector<StimulusWords>>>(&value);
-        if (list.empty()) return refused(parameter.name, "the array is empty", "Give at least one stimulus.");
+        if (list.empty()) return refused(parameter.name, "the list is empty", "give at least one stimulus");
         if (depth > deepest_nesting) {
             return refused(parameter.name, "stimuli stand " + std::to_string(depth) + " deep in each other",
-                           "Nest at most " + std::to_string(deepest_nesting) + " deep.");
+                           "nest at most " + std::to_string(deepest_nesting) + " deep");
         }
         for (std::size_t i = 0; i < list.size(); ++i) {
             if (++stimuli_ > most_nested_stimuli) {
                 return refused(
                     parameter.name, "there are more than " + std::to_string(most_nested_stimuli) + " stimuli in all",
-                    "Give at most " + std::to_string(most_nested_stimuli) + "; repeat says a part many times.");
+                    "give at most " + std::to_string(most_nested_stimuli) + "; repeat says a part many times");
             }
             const Recipe* recipe = find_recipe(stimulus_recipes(), list[i].shape);
             auto error = recipe == nullptr ? std::optional(unknown_shape_error(list[i].shape))
@@ -190,7 +189,7 @@ std::optional<Error> misfit_of(const Recipe& recipe, const ParameterValues& valu
 Error unknown_shape_error(std::string_view shape) {
     std::vector<std::string_view> known;
     for (const Recipe& recipe : stimulus_recipes()) known.push_back(recipe.name);
-    return refused("shape", "no stimulus is called \"" + std::string(shape) + "\"", "Shapes: " + listed(known) + ".");
+    return refused("shape", "no stimulus is called \"" + std::string(shape) + "\"", "shapes: " + listed(known));
 }
 
 }  // namespace halflsb

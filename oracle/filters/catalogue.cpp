@@ -51,7 +51,7 @@ Outcome<std::optional<int>> fraction_bits_of(const FilterKind& kind, const Param
     const auto bits = values.integer(kind.recipe, fraction_bits_name);
     if (!bits || *bits < 0 || *bits > static_cast<std::int64_t>(most_fraction_bits)) {
         return refuse(fraction_bits_name, bits ? std::to_string(*bits) + " is out of range" : "not a whole number",
-                      "give a whole number within 0 .. 62");
+                      "give a whole number from 0 to 62");
     }
     return std::optional<int>(static_cast<int>(*bits));
 }
@@ -62,7 +62,7 @@ Outcome<std::vector<int>> channels_of(const ParameterValues& values, int channel
     const std::string remedy = channels == 1
                                    ? "the signal has 1 channel: leave the list out"
                                    : "the signal has " + std::to_string(channels) +
-                                         " channels: give whole numbers within 1 .. " + std::to_string(channels);
+                                         " channels: give whole numbers from 1 to " + std::to_string(channels);
     const std::vector<double> numbers = values.numbers(channels_name);
     if (numbers.empty()) return refuse(channels_name, "no channel passes this stage", remedy);
     for (const double number : numbers) {
@@ -71,7 +71,7 @@ Outcome<std::vector<int>> channels_of(const ParameterValues& values, int channel
         }
         const int channel = static_cast<int>(number);
         if (std::find(list.begin(), list.end(), channel) != list.end()) {
-            return refuse(channels_name, "channel " + std::to_string(channel) + " stands twice",
+            return refuse(channels_name, "channel " + std::to_string(channel) + " is there twice",
                           "name each channel once");
         }
         list.push_back(channel);

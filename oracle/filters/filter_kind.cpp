@@ -45,9 +45,8 @@ Outcome<std::string> one_of(const ParameterValues& values, std::initializer_list
 
 std::optional<Error> unusable_number(std::string_view place, double number) {
     if (std::fabs(number) <= largest_coefficient) return std::nullopt;
-    return refuse(
-        place, text_of(number) + " is no coefficient",
-        "each number must lie within -" + text_of(largest_coefficient) + " .. " + text_of(largest_coefficient));
+    return refuse(place, text_of(number) + " is no coefficient",
+                  "give numbers from -" + text_of(largest_coefficient) + " to " + text_of(largest_coefficient));
 }
 
 std::optional<Error> beyond_nyquist(std::string_view place, double frequency_hz, double rate_hz) {

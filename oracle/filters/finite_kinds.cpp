@@ -10,7 +10,7 @@ constexpr std::size_t most_taps = 65536;
 
 Outcome<FilterDesign> make_moving_average(const Recipe& recipe, const ParameterValues& values, const StageContext&) {
     const auto points = values.integer(recipe, "points");
-    const std::string remedy = "give a whole number within 1 .. " + text_of(most_points);
+    const std::string remedy = "give a whole number from 1 to " + text_of(most_points);
     if (!points) return refuse("points", values.has("points") ? "not a whole number" : "points is missing", remedy);
     if (*points < 1 || *points > static_cast<std::int64_t>(most_points)) {
         return refuse("points", std::to_string(*points) + " points", remedy);
@@ -31,7 +31,7 @@ Outcome<FilterDesign> make_fir(const Recipe&, const ParameterValues& values, con
     FilterStage stage{Fir{values.numbers(*name)}, std::nullopt};
     const auto& taps = std::get<Fir>(stage.design).taps;
     if (taps.empty() || taps.size() > most_taps) {
-        return refuse(*name, text_of(taps.size()) + " taps", "give 1 .. " + text_of(most_taps) + " taps");
+        return refuse(*name, text_of(taps.size()) + " taps", "give 1 to " + text_of(most_taps) + " taps");
     }
     for (const double tap : taps) {
         if (auto error = unusable_number(*name, tap)) return *error;

@@ -57,7 +57,7 @@ Outcome<FilterDesign> make_cascade(const Recipe&, const ParameterValues& values,
     const auto rows = section_rows(values, *name);
     if (!rows) return rows.error();
     if (rows->empty() || rows->size() > most_sections) {
-        return refuse(*name, text_of(rows->size()) + " sections", "give 1 .. " + text_of(most_sections) + " sections");
+        return refuse(*name, text_of(rows->size()) + " sections", "give 1 to " + text_of(most_sections) + " sections");
     }
     BiquadCascade cascade;
     for (const auto& row : *rows) {

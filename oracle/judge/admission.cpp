@@ -88,7 +88,7 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
     if (spectrum.tones.empty() && spectrum.bands.empty()) {
         refusals.push_back(
             {rule.position,
-             "case \"" + the_case.name + "\" cannot answer a response rule, which is not for a " + the_case.shape,
+             "case \"" + the_case.name + "\" cannot answer a response rule with shape = \"" + the_case.shape + "\"",
              "use noise, a chirp, a sine or a multitone"});
         return;
     }
@@ -106,7 +106,7 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
         refusals.push_back(
             {rule.position,
              "case \"" + the_case.name + "\" is too short for a response: " + std::to_string(length) + " samples",
-             "give it at least " + std::to_string(shortest_samples)});
+             "give it at least " + std::to_string(shortest_samples) + " samples"});
         return;
     }
     for (const ResponseBand& band : std::get<ResponseRule>(rule.kind).bands) {

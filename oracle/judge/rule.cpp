@@ -66,7 +66,7 @@ Outcome<Rule> make_error_rule(const ParameterValues& values, const Recipe& recip
     }
     rule.min_snr_db = values.number(recipe, "min_snr_db");
     if (!rule.largest && !rule.rms && !rule.bias && !rule.min_snr_db) {
-        return refuse("kind", "an error rule without a limit judges nothing",
+        return refuse("kind", "a rule of kind \"error\" without a limit judges nothing",
                       "give at least one of max_lsb, rms_lsb, bias_lsb (or _ratio, _unit) and min_snr_db");
     }
     return Rule{rule, {}};

@@ -60,7 +60,7 @@ Outcome<std::vector<std::size_t>> select_cases(const std::vector<std::string>& n
         const std::vector<std::string_view> known(names.begin(), names.end());
         if (const auto near = nearest_word(pattern, known); !near.empty())
             remedy = "did you mean '" + printable(near) + "'? ";
-        remedy += "The plan's cases are:";
+        remedy += "the plan's cases are:";
         for (std::size_t i = 0; i < std::min(names.size(), most_names_listed); ++i)
             remedy += "\n    " + printable(names[i]);
         if (names.size() > most_names_listed) {

@@ -100,7 +100,7 @@ Outcome<std::size_t> check_values(const std::vector<std::string>& arguments) {
         const std::size_t equals = argument.find('=');
         if (option->argument.empty()) {
             if (equals != std::string::npos)
-                return usage_error(std::string(option->name) + " takes no value", "leave away what follows it");
+                return usage_error(std::string(option->name) + " takes no value", "leave out what follows it");
         } else if (equals != std::string::npos) {
             if (equals + 1 == argument.size()) return value_missing(*option);
         } else if (i + 1 == arguments.size() || arguments[i + 1] == "--" || find_option(arguments[i + 1]) != nullptr) {

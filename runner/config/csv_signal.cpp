@@ -159,8 +159,9 @@ private:
             const std::size_t last = std::min(cells_.size(), columns_.size() + 1) - 1;
             const bool is_doubled = separator_ == ',' && cells_.size() == 2 * columns_.size();
             refuse(place_of(number, line, cells_[last].offset),
-                   std::to_string(cells_.size()) + " columns in this line, " + std::to_string(columns_.size()) +
-                       " in those above" + (is_doubled ? ": have the numbers a decimal comma?" : ""),
+                   std::to_string(cells_.size()) + (cells_.size() == 1 ? " column" : " columns") + " in this line, " +
+                       std::to_string(columns_.size()) + " in those above" +
+                       (is_doubled ? ": have the numbers a decimal comma?" : ""),
                    is_doubled ? point : how);
             return;
         }

@@ -32,7 +32,7 @@ std::vector<std::string> read_labels(TableReader& reader) {
     if (entry == nullptr) return labels;
     constexpr std::string_view how = "write labels = [\"quick\"]";
     if (entry->value.kind != TomlValue::Kind::array) {
-        reader.refuse(entry->value.place, "labels is " + kind_text(entry->value) + ", wanted an array of strings", how);
+        reader.refuse(entry->value.place, "labels is " + kind_text(entry->value) + ", wanted a list of strings", how);
         return labels;
     }
     if (entry->value.items.empty())
@@ -44,7 +44,7 @@ std::vector<std::string> read_labels(TableReader& reader) {
             reader.refuse(item.place, quoted(item.text) + " is no label",
                           "use letters, digits, - and _, at most " + std::to_string(most_label_characters));
         } else if (std::find(labels.begin(), labels.end(), item.text) != labels.end()) {
-            reader.refuse(item.place, "the label " + quoted(item.text) + " stands here twice", "keep one of the two");
+            reader.refuse(item.place, "the label " + quoted(item.text) + " is there twice", "keep one of the two");
         } else {
             labels.push_back(item.text);
         }

@@ -117,7 +117,7 @@ std::optional<std::vector<double>> reals_of(const Parameter& parameter, const To
                                             ReadContext& context) {
     if (value.kind != TomlValue::Kind::array) {
         refuse_type(parameter, value, name,
-                    parameter.type == ParameterType::integers ? wanted_text(parameter.type) : "an array of numbers",
+                    parameter.type == ParameterType::integers ? wanted_text(parameter.type) : "a list of numbers",
                     context);
         return std::nullopt;
     }

@@ -7,6 +7,19 @@
 
 namespace halflsb {
 
+namespace {
+
+/// The help of a word is a sentence, a remedy is none.
+std::string as_remedy(std::string_view help) {
+    std::string text(help);
+    if (text.ends_with('.')) text.pop_back();
+    const bool is_word = text.size() > 1 && (text[1] == ' ' || (text[1] >= 'a' && text[1] <= 'z'));
+    if (is_word && text[0] >= 'A' && text[0] <= 'Z') text[0] = static_cast<char>(text[0] - 'A' + 'a');
+    return text;
+}
+
+}  // namespace
+
 Outcome<std::string_view> ReadContext::read_named_file(const std::string& path, std::size_t cap_bytes) {
     const auto known =
         std::find_if(parts.begin(), parts.end(), [&](const PlanPart& part) { return part.path == path; });
@@ -74,7 +87,7 @@ ParameterValues TableReader::parameters(const Recipe& recipe, std::string_view m
                 values.set(std::string(parameter.name), std::move(*value));
         } else if (parameter.required && parameter.name != may_lack) {
             refuse(place(), where() + addition_ + " has no " + std::string(parameter.name),
-                   "add " + std::string(parameter.name) + ": " + std::string(parameter.help));
+                   "add " + std::string(parameter.name) + ": " + as_remedy(parameter.help));
         }
     }
     return values;

@@ -67,7 +67,7 @@ bool is_port(std::string_view port) {
     const std::string_view product_and_serial = port.substr(colon + 1);
     const std::string_view product = product_and_serial.substr(0, product_and_serial.find(':'));
     const bool has_empty_serial = product_and_serial.size() == product.size() + 1;
-    return colon <= 4 && is_hex(port.substr(0, colon)) && product.size() <= 4 && is_hex(product) && !has_empty_serial;
+    return colon == 4 && is_hex(port.substr(0, colon)) && product.size() == 4 && is_hex(product) && !has_empty_serial;
 }
 
 void read_link(ReadContext& context, TableReader& top, Rig& rig) {
@@ -81,7 +81,8 @@ void read_link(ReadContext& context, TableReader& top, Rig& rig) {
     rig.port = values.text(link_recipe(), "port").value_or("");
     if (!is_port(rig.port)) {
         reader.refuse(reader.place_of("port"), "port = " + quoted(rig.port) + " is no name of a USB port",
-                      "write usb:VID:PID or usb:VID:PID:SERIAL, vendor and product in hex; halflsb ports lists them");
+                      "write usb:VID:PID or usb:VID:PID:SERIAL with four hex digits each, as in "
+                      "usb:0403:6001; halflsb ports lists them");
     }
     if (rig.port.starts_with("./")) rig.port = rig.folder + rig.port.substr(1);
     rig.baud = static_cast<long>(values.integer(link_recipe(), "baud").value_or(0));

@@ -62,7 +62,7 @@ Message redefinition(const SourceText& source, Place place, std::string_view con
 Message end_of_file(Place place, std::string_view context) {
     if (has(context, "string"))
         return {place, "the file ends inside a string", "close the string with a quotation mark"};
-    if (has(context, "array")) return {place, "the file ends inside an array", "close the array with ]"};
+    if (has(context, "array")) return {place, "the file ends inside a list", "close the list with ]"};
     if (has(context, "inline table")) return {place, "the file ends inside an inline table", "close the table with }"};
     if (has(context, "header")) return {place, "the file ends inside a header", "close the header with ]"};
     return {place, "the value is missing", "write key = value"};
@@ -78,6 +78,8 @@ Message message_for(const SourceText& source, Place place, std::string_view cont
     if (has(context, "inline table") && (has(detail, "dangling comma") || has(detail, "saw comma"))) {
         return {place, "a comma without a key in an inline table", "remove the comma"};
     }
+    if (has(context, "header") && has(detail, "expected ']'"))
+        return {place, "the header is not closed", "close it with ], one of a list with ]]"};
     if (has(detail, "end-of-file") || has(detail, "saw EOF")) return end_of_file(place, context);
     if (has(context, "string") && has(detail, "control characters")) {
         const bool line_ends = static_cast<std::size_t>(place.column) > columns_of(source.line(place.line));
@@ -103,7 +105,7 @@ Message message_for(const SourceText& source, Place place, std::string_view cont
     if (has(context, "integer") || has(context, "floating-point")) {
         return {place, "this is not a number: " + printable(detail), "write numbers like 12, -3, 0.5 or 1e-6"};
     }
-    if (has(context, "array")) return {place, "in an array: " + printable(detail), "write arrays like [1, 2, 3]"};
+    if (has(context, "array")) return {place, "in a list: " + printable(detail), "write lists like [1, 2, 3]"};
     return {place, printable(detail), "a line is key = value, [table], [[list of tables]] or # a comment"};
 }
 

@@ -120,7 +120,7 @@ std::string kind_text(const TomlValue& value) {
         case TomlValue::Kind::date:
             return "a date or time";
         case TomlValue::Kind::array:
-            return "an array";
+            return "a list";
         case TomlValue::Kind::table:
             return "a table";
     }

@@ -37,7 +37,7 @@ struct TomlEntry {
     TomlValue value;
 };
 
-/// For messages: "a string", "a whole number", "a number", "a boolean", "a date or time", "an array", "a table".
+/// For messages: "a string", "a whole number", "a number", "a boolean", "a date or time", "a list", "a table".
 std::string kind_text(const TomlValue& value);
 
 /// The tree, or the one message about what is no TOML, a repeated key among it. The library stops at the

@@ -32,18 +32,18 @@ std::string wanted_text(ParameterType type) {
         case ParameterType::choice:
             return "a string";
         case ParameterType::reals:
-            return "an array of numbers";
+            return "a list of numbers";
         case ParameterType::sections:
-            return "an array of arrays of numbers";
+            return "a list of lists of numbers";
         case ParameterType::bands:
-            return "an array of tables";
+            return "a list of tables";
         case ParameterType::file:
         case ParameterType::signal_file:
             return "the name of a file";
         case ParameterType::integers:
-            return "an array of whole numbers";
+            return "a list of whole numbers";
         case ParameterType::stimuli:
-            return "an array of tables";
+            return "a list of tables";
     }
     return {};
 }

@@ -106,7 +106,7 @@ Outcome<std::optional<UsbName>> parse_usb_name(std::string_view name) {
     const Error malformed{ErrorKind::input, std::string(name),
                           "\"" + std::string(name) + "\" is not a stable name of a serial port",
                           "write usb:VID:PID or usb:VID:PID:SERIAL with four hex digits each, as in "
-                          "usb:0403:6001; `halflsb ports` lists them"};
+                          "usb:0403:6001; halflsb ports lists them"};
     const std::string_view rest = name.substr(prefix.size());
     // VVVV:PPPP, then nothing or a colon and at least one character.
     if (rest.size() < 9 || rest[4] != ':') return malformed;
@@ -125,7 +125,7 @@ Error no_such_port(std::string_view name, std::span<const PortInfo> ports) {
         return Error{ErrorKind::bench, std::string(name), "no such port; this machine has no serial port now",
                      "plug the board in, and check the cable: some carry power only"};
     return Error{ErrorKind::bench, std::string(name), "no such port; the ports seen: " + listing(ports),
-                 "correct `port` in the rig, or plug the board in; `halflsb ports` lists the ports"};
+                 "correct port in the rig, or plug the board in; halflsb ports lists the ports"};
 }
 
 Outcome<std::string> find_device(std::string_view name, std::span<const PortInfo> ports) {
@@ -138,7 +138,7 @@ Outcome<std::string> find_device(std::string_view name, std::span<const PortInfo
     if (found.empty()) return no_such_port(name, ports);
     if (found.size() > 1)
         return Error{ErrorKind::bench, std::string(name), "more than one port has this name: " + listing(found),
-                     "add the serial number to `port` in the rig: usb:VID:PID:SERIAL"};
+                     "add the serial number to port in the rig: usb:VID:PID:SERIAL"};
     return found.front().device;
 }
 

@@ -56,7 +56,7 @@ Outcome<void> configure_real_port(const std::string& port, const std::string& de
     sp_port* raw = nullptr;
     const auto not_a_port = [&port] {
         return Error{ErrorKind::bench, port, "this terminal is not a serial port: " + last_text(),
-                     "`halflsb ports` lists the serial ports"};
+                     "halflsb ports lists the serial ports"};
     };
     if (sp_get_port_by_name(device.c_str(), &raw) != SP_OK) return not_a_port();
     const std::unique_ptr<sp_port, FreePort> freed(raw);

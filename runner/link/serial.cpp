@@ -14,11 +14,11 @@
 #include <cstring>
 #include <exception>
 
-#include "runner/world/file_descriptor.hpp"
 #include "runner/link/descriptor_link.hpp"
 #include "runner/link/port_holder.hpp"
 #include "runner/link/ports.hpp"
 #include "runner/link/real_port.hpp"
+#include "runner/world/file_descriptor.hpp"
 
 namespace halflsb {
 namespace {
@@ -59,7 +59,7 @@ Error busy(const std::string& port, dev_t device, int own_descriptor) {
 
 Error not_a_terminal(const std::string& port) {
     return bench(port, "this is not a serial port: it is no terminal device",
-                 "`port` in the rig names a device such as /dev/ttyUSB0, or a stable name; `halflsb ports` lists them");
+                 "port in the rig names a device such as /dev/ttyUSB0, or a stable name; halflsb ports lists them");
 }
 
 Error missing(const std::string& port, const std::string& path) {

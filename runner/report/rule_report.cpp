@@ -19,7 +19,7 @@ constexpr std::size_t most_rows = 12;
 constexpr std::size_t longest_note_in_cell = 24;
 
 std::string with_unit(const std::string& number, const std::string& unit) {
-    if (unit.empty()) return number;
+    if (unit.empty() || number == "not a number") return number;
     if (unit == "samples" && (number == "1" || number == "-1")) return number + " sample";
     return number + " " + printable(unit);
 }

@@ -161,7 +161,8 @@ Outcome<void> FramedSession::take_done(message::BytesView body) {
     if (frame.type == message::Type::samples)
         return broken_answer("the board answered " + oldest_name() + " with DONE instead of RESPONSE");
     if (done->at != static_cast<std::uint64_t>(frame.at))
-        return broken_answer("the board did " + oldest_name() + " before sample " + std::to_string(done->at));
+        return broken_answer("asked for " + oldest_name() + ", the board did it before sample " +
+                             std::to_string(done->at));
     advance_window();
     return {};
 }

@@ -10,10 +10,10 @@
 
 #include <array>
 #include <cerrno>
-#include <cmath>
 #include <cstring>
 
 #include "runner/world/interrupt.hpp"
+#include "stimuli/number_text.hpp"
 
 extern char** environ;
 
@@ -166,8 +166,7 @@ Outcome<void> run_command(const std::vector<std::string>& arguments, const std::
         if (clock.now() >= deadline) {
             stop(child);
             result = Error{ErrorKind::bench, name,
-                           "ran longer than " + std::to_string(std::lround(to_seconds(limit))) +
-                               " s and was stopped; " + output.tail(),
+                           "ran longer than " + number_text(to_seconds(limit)) + " s and was stopped; " + output.tail(),
                            "raise before_run_limit_s in [commands], or find out what it waits for"};
             break;
         }

@@ -42,20 +42,20 @@ TEST_CASE("burst: those that are asked for must fit", "[stimuli]") {
     CHECK(asked(210, 3) == "accepted");
     CHECK(asked(209, 3) ==
           "repeats: 3 bursts take 210 samples, from at_samples on there are 209\n"
-          "  Make the stimulus longer, or the bursts shorter or fewer.");
+          "  make the stimulus longer, or the bursts shorter or fewer");
     CHECK(asked(209, 10'000'000'000) ==
           "repeats: 10000000000 bursts take 799999999970 samples, from at_samples on there are 209\n"
-          "  Make the stimulus longer, or the bursts shorter or fewer.");
+          "  make the stimulus longer, or the bursts shorter or fewer");
     CHECK(refusal("burst", {{"length_samples", std::int64_t{49}},
                             {"frequency_hz", 1000.0},
                             {"on_samples", std::int64_t{50}},
                             {"off_samples", std::int64_t{30}}}) ==
           "on_samples: 1 burst takes 50 samples, from at_samples on there are 49\n"
-          "  Make the stimulus longer, or the bursts shorter or fewer.");
+          "  make the stimulus longer, or the bursts shorter or fewer");
     CHECK(refusal("burst", {{"length_samples", std::int64_t{500}},
                             {"frequency_hz", 24000.0},
                             {"on_samples", std::int64_t{50}},
                             {"off_samples", std::int64_t{30}}}) ==
-          "phase_turns: 0 makes a sine at Nyquist, 24000 Hz, zero in every sample\n"
-          "  Give phase_turns = 0.25, or a lower frequency.");
+          "phase_turns: a sine of 24000 Hz, Nyquist, with phase_turns = 0 is zero in every sample\n"
+          "  give phase_turns = 0.25, or a lower frequency");
 }

@@ -33,7 +33,7 @@ TEST_CASE("silence: the zero of the format and nothing else", "[stimuli]") {
     CHECK(codes_of(*silence, "f32", 0, 3) == std::vector<Code>(3, 0));
     CHECK(silence->spectrum().bands.empty());
     CHECK(refusal("silence", {{"length_samples", std::int64_t{3}}, {"level_ratio", 0.5}}) ==
-          "level_ratio: \"silence\" has no such parameter\n  Parameters: length_samples, add.");
+          "level_ratio: \"silence\" has no such parameter\n  parameters: length_samples, add");
 }
 
 TEST_CASE("step: without a level it is half of full scale", "[stimuli]") {

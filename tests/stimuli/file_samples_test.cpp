@@ -69,8 +69,8 @@ TEST_CASE("file: added to a shorter stimulus, it is not cut without a word", "[s
         return refusal("step", {{"length_samples", std::int64_t{2}}, {"add", list({words("file", given)})}});
     };
     CHECK(added({{"file", three}}) ==
-          "add[1].file: its 3 samples are more than the 2 of the stimulus that it is added to\n  Say how much of it is "
-          "meant: length_samples = 2.");
+          "add[1].file: its 3 samples are more than the 2 of the stimulus that it is added to\n  say how much of it is "
+          "meant: length_samples = 2");
     CHECK(added({{"file", three}, {"length_samples", std::int64_t{2}}}) == "accepted");
     CHECK(refusal("step", {{"length_samples", std::int64_t{3}}, {"add", list({words("file", {{"file", three}})})}}) ==
           "accepted");
@@ -84,21 +84,20 @@ TEST_CASE("file: a column by its name, or by its number", "[stimuli]") {
     CHECK(chosen("gross") == 1);
     CHECK(chosen("1") == 1);
     CHECK(chosen("2") == 2);
-    CHECK(
-        refusal("file", {{"file", two}}) ==
-        "column: \"data/belt.csv\" has 2 columns\n  Give column = one of: gross, 2, or its number from 1, in quotes.");
+    CHECK(refusal("file", {{"file", two}}) ==
+          "column: \"data/belt.csv\" has 2 columns\n  give column = one of: gross, 2, or its number from 1, in quotes");
     for (const auto wrong : {"0", "3", "net", "1x", ""}) {
         CHECK(refusal("file", {{"file", two}, {"column", std::string(wrong)}}) ==
               "column: \"data/belt.csv\" has no column \"" + std::string(wrong) +
-                  "\"\n  Give column = one of: gross, 2, or its number from 1, in quotes.");
+                  "\"\n  give column = one of: gross, 2, or its number from 1, in quotes");
     }
     // A heading that is a number counts as a name first.
     const auto swapped = file({{1}, {2}}, true, {"2", "1"});
     CHECK(codes_of(*made("file", {{"file", swapped}, {"column", std::string("1")}}), "q15", 0, 1)[0] == 2);
     CHECK(refusal("file", {{"file", file({})}}) ==
-          "file: \"data/belt.csv\" holds no samples\n  Name a file with at least one.");
+          "file: \"data/belt.csv\" holds no samples\n  name a file with at least one");
     CHECK(refusal("file", {{"file", file({{}})}}) ==
-          "file: \"data/belt.csv\" holds no samples\n  Name a file with at least one.");
+          "file: \"data/belt.csv\" holds no samples\n  name a file with at least one");
 }
 
 TEST_CASE("file: samples that cannot be sent are refused by their index", "[stimuli]") {
@@ -108,30 +107,30 @@ TEST_CASE("file: samples that cannot be sent are refused by their index", "[stim
                        1200.0, format, 6000.0);
     };
     CHECK(problem({0, 1, not_a_number}, "codes") ==
-          "file: sample 2 of \"data/belt.csv\", counted from 0, is nan\n  Only finite numbers can be sent.");
+          "file: sample 2 of \"data/belt.csv\", counted from 0, is nan\n  only finite numbers can be sent");
     CHECK(problem({0, INFINITY}, "unit") ==
-          "file: sample 1 of \"data/belt.csv\", counted from 0, is inf\n  Only finite numbers can be sent.");
+          "file: sample 1 of \"data/belt.csv\", counted from 0, is inf\n  only finite numbers can be sent");
     CHECK(problem({0, 0.5}, "codes") ==
           "file: sample 1 of \"data/belt.csv\", counted from 0, is 0.5, and a code is a whole number\n"
-          "  Say what the file holds: holds = \"ratio\" or \"unit\".");
+          "  say what the file holds: holds = \"ratio\" or \"unit\"");
     CHECK(problem({0, 4096}, "auto", "u12") ==
           "file: sample 1 of \"data/belt.csv\", counted from 0, is 4096, which is no code of u12\n"
-          "  Its codes are 0 to 4095.");
+          "  its codes are 0 to 4095");
     CHECK(problem({-1}, "auto", "u12") ==
           "file: sample 0 of \"data/belt.csv\", counted from 0, is -1, which is no code of u12\n"
-          "  Its codes are 0 to 4095.");
+          "  its codes are 0 to 4095");
     CHECK(problem({1.0000000000000002}, "auto", "q15", false) ==
           "file: sample 0 of \"data/belt.csv\", counted from 0, is 1.0000000000000002, beyond full scale, 1\n"
-          "  Say what the file holds, or scale it.");
+          "  say what the file holds, or scale it");
     CHECK(problem({6000, -6000}, "unit") == "accepted");
     CHECK(problem({-6001}, "unit") ==
           "file: sample 0 of \"data/belt.csv\", counted from 0, is -6001, beyond full scale, 6000\n"
-          "  Say what the file holds, or scale it.");
+          "  say what the file holds, or scale it");
     CHECK(problem({1}, "codes", "f32") ==
-          "holds: format f32 has no codes that count\n  Let the file hold ratios of full scale, holds = \"ratio\".");
+          "holds: format f32 has no codes that count\n  let the file hold ratios of full scale, holds = \"ratio\"");
     CHECK(refusal("file", {{"file", file({{1}})}, {"holds", std::string("unit")}}) ==
           "holds: nothing says what full scale of the input means in a unit\n"
-          "  Say so in [signal], or let the file hold ratios of full scale.");
+          "  say so in [signal], or let the file hold ratios of full scale");
 }
 
 TEST_CASE("file: another rate or more samples than it has are refused", "[stimuli]") {
@@ -139,18 +138,18 @@ TEST_CASE("file: another rate or more samples than it has are refused", "[stimul
     CHECK(refusal("file", {{"file", three}, {"recorded_rate_hz", 1200.0}}, 1200.0) == "accepted");
     CHECK(refusal("file", {{"file", three}, {"recorded_rate_hz", 1000.0}}, 1200.0) ==
           "recorded_rate_hz: it was recorded at 1000 Hz, the signal has 1200 Hz\n"
-          "  Resample the file, or correct the rate.");
+          "  resample the file, or correct the rate");
     CHECK(refusal("file", {{"file", file({{1}}, true, {}, 1200.0)}}, 1200.0) == "accepted");
     CHECK(refusal("file", {{"file", file({{1}}, true, {}, 48000.0)}}, 1200.0) ==
           "file: \"data/belt.csv\" says that it was recorded at 48000 Hz, the signal has 1200 Hz\n"
-          "  Resample the file, or correct the rate.");
+          "  resample the file, or correct the rate");
     CHECK(refusal("file", {{"file", three}, {"length_samples", std::int64_t{3}}}) == "accepted");
     CHECK(refusal("file", {{"file", three}, {"length_samples", std::int64_t{4}}}) ==
-          "length_samples: 4 samples are more than the file gives, 3\n  Give at most 3, or a larger repeat.");
+          "length_samples: 4 samples are more than the file gives, 3\n  give at most 3, or a larger repeat");
     CHECK(refusal("file", {{"file", three}, {"length_samples", std::int64_t{4}}, {"repeat", std::int64_t{2}}}) ==
           "accepted");
     CHECK(refusal("file", {{"file", three}, {"repeat", std::int64_t{10'000'000'000}}}) ==
           "repeat: 10000000000 times 3 samples, from 0 on, are more than the longest stimulus, 10000000000\n"
-          "  Repeat it less often.");
+          "  repeat it less often");
     CHECK(refusal("file", {{"file", std::shared_ptr<const SignalFile>()}}) == "file: needs the samples of a file");
 }

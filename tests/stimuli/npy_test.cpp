@@ -98,37 +98,37 @@ TEST_CASE("npy: every truncation of a header is refused", "[stimuli]") {
         REQUIRE(header.error().place == "byte " + std::to_string(size));
     }
     CHECK(parsed(std::vector<std::byte>(whole.begin(), whole.begin() + 100)) ==
-          "byte 100: the file ends inside its NPY header of 128 bytes\n  The file is cut off; write it again.");
+          "byte 100: the file ends inside its NPY header of 128 bytes\n  it is cut off; write it again");
     CHECK(parsed(std::vector<std::byte>{}) ==
-          "byte 0: the file ends inside its NPY header of 10 bytes\n  The file is cut off; write it again.");
+          "byte 0: the file ends inside its NPY header of 10 bytes\n  it is cut off; write it again");
 }
 
 TEST_CASE("npy: other files, versions and lengths are refused", "[stimuli]") {
     CHECK(parsed(bytes_of_text("PK\x03\x04 a zip archive")) ==
-          "byte 0: this is no NPY file\n  Save the array with NumPy's save().");
-    CHECK(parsed(bytes_of_text("\x93NUMPX")) == "byte 5: this is no NPY file\n  Save the array with NumPy's save().");
+          "byte 0: this is no NPY file\n  save the array with NumPy's save()");
+    CHECK(parsed(bytes_of_text("\x93NUMPX")) == "byte 5: this is no NPY file\n  save the array with NumPy's save()");
     auto file = file_with(good);
     file[6] = std::byte{3};
-    CHECK(parsed(file) == "byte 6: NPY version 3.0 is not taken\n  Save as version 1.0 or 2.0.");
+    CHECK(parsed(file) == "byte 6: NPY version 3.0 is not taken\n  save as version 1.0 or 2.0");
     file[6] = std::byte{2};  // now the length is the next four bytes: far too long
     CHECK(parsed(file) ==
-          "byte 8: a dictionary of 662372410 bytes is too long\n  Ours need 118 bytes; the file is damaged, or no "
-          "plain array.");
+          "byte 8: a dictionary of 662372410 bytes is too long\n  ours need 118 bytes; the file is damaged, or no "
+          "plain array");
 }
 
 TEST_CASE("npy: types and shapes that are not ours are refused", "[stimuli]") {
     CHECK(parsed("{'descr': '>i2', 'fortran_order': False, 'shape': (7,), }\n") ==
-          "byte 20: elements of type '>i2' are not taken\n  Save as one of |i1, |u1, <u2, <i2, <i4, <i8, <f4, <f8.");
+          "byte 20: elements of type '>i2' are not taken\n  save as one of |i1, |u1, <u2, <i2, <i4, <i8, <f4, <f8");
     CHECK(parsed("{'descr': [('a', '<i2')], 'fortran_order': False, 'shape': (7,), }\n") ==
-          "byte 20: elements are records\n  Save each column as an array of its own.");
+          "byte 20: elements are records\n  save each column as an array of its own");
     CHECK(parsed("{'descr': '<i2', 'fortran_order': True, 'shape': (7, 2), }\n") ==
-          "byte 10: several channels in Fortran order\n  Save the array in C order, (samples, channels).");
+          "byte 10: several channels in Fortran order\n  save the array in C order, (samples, channels)");
     CHECK(parsed("{'descr': '<i2', 'fortran_order': False, 'shape': (7, 2, 1), }\n") ==
-          "byte 60: the array has 3 dimensions\n  Save one channel as a one-dimensional array, several as (samples, "
-          "channels).");
+          "byte 60: the array has 3 dimensions\n  save one channel as a one-dimensional array, several as (samples, "
+          "channels)");
     CHECK(parsed("{'descr': '<i2', 'fortran_order': False, 'shape': (), }\n") ==
-          "byte 60: the array has 0 dimensions\n  Save one channel as a one-dimensional array, several as (samples, "
-          "channels).");
+          "byte 60: the array has 0 dimensions\n  save one channel as a one-dimensional array, several as (samples, "
+          "channels)");
 }
 
 TEST_CASE("npy: a damaged dictionary is refused where it is damaged", "[stimuli]") {

@@ -123,14 +123,14 @@ TEST_CASE("prbs: its power is continuous until the lines of its period are resol
 TEST_CASE("prbs: orders and registers that are none are refused", "[stimuli]") {
     const std::int64_t ten = 10;
     CHECK(refusal("prbs", {{"length_samples", ten}, {"order", std::int64_t{10}}}) ==
-          "order: 10 is not an order of ITU-T O.150\n  Give 9, 11, 15, 20, 23 or 31.");
+          "order: 10 is not an order of ITU-T O.150\n  give 9, 11, 15, 20, 23 or 31");
     CHECK(refusal("prbs", {{"length_samples", ten}, {"order", std::int64_t{32}}}) ==
-          "order: 32 is above the largest, 31\n  Give 31 or less.");
+          "order: 32 is above the largest, 31\n  give 31 or less");
     CHECK(refusal("prbs", {{"length_samples", ten}, {"register_seed", std::int64_t{0}}}) ==
-          "register_seed: 0 is below the least, 1\n  Give 1 or more.");
+          "register_seed: 0 is below the least, 1\n  give 1 or more");
     CHECK(
         refusal("prbs", {{"length_samples", ten}, {"order", std::int64_t{9}}, {"register_seed", std::int64_t{512}}}) ==
-        "register_seed: 512 needs more than the 9 stages of the register\n  Give a whole number from 1 to 511.");
+        "register_seed: 512 needs more than the 9 stages of the register\n  give a whole number from 1 to 511");
     CHECK(
         refusal("prbs", {{"length_samples", ten}, {"order", std::int64_t{9}}, {"register_seed", std::int64_t{511}}}) ==
         "accepted");

@@ -99,7 +99,7 @@ TEST_CASE("sample layout: one byte has no order, a full container no left, only 
     CHECK(text_of(laid_out("i24", Justification::packed)) == "i24, packed");
     CHECK(text_of(format_named("u12")) == "u12");
     CHECK(refused_layout("q15", Justification::left) ==
-          "justification: there is no left in q15: it fills its 2 bytes\n"
+          "justification: q15 has no room to the left: it fills its 2 bytes\n"
           "  leave it out; only u12 and i24 have spare bits");
     CHECK(refused_layout("u12", Justification::packed) ==
           "justification: u12 cannot be packed\n  leave it out; only i24 has a byte to save");

@@ -62,34 +62,34 @@ TEST_CASE("sequence: a thousand parts are gone through, and one more is refused"
     parts.push_back(step(1, 1));
     CHECK(refusal("sequence", {{"parts", list(parts)}}) ==
           "parts: there are more than 1000 stimuli in all\n"
-          "  Give at most 1000; repeat says a part many times.");
+          "  give at most 1000; repeat says a part many times");
     // Those inside others count too.
     parts.resize(998);
     parts.push_back(words("sequence", {{"parts", list({step(1, 1), step(1, 1)})}}));
     CHECK(refusal("sequence", {{"parts", list(parts)}}) ==
           "parts[999].parts: there are more than 1000 stimuli in all\n"
-          "  Give at most 1000; repeat says a part many times.");
+          "  give at most 1000; repeat says a part many times");
 }
 
 TEST_CASE("sequence: nested four deep and no deeper", "[stimuli]") {
     CHECK(refusal("sequence", {{"parts", nested(4)}}) == "accepted");
     CHECK(refusal("sequence", {{"parts", nested(5)}}) ==
-          "parts[1].parts[1].parts[1].parts[1].parts: stimuli stand 5 deep in each other\n  Nest at most 4 deep.");
+          "parts[1].parts[1].parts[1].parts[1].parts: stimuli stand 5 deep in each other\n  nest at most 4 deep");
     // Far deeper, nothing overflows.
     CHECK(refusal("sequence", {{"parts", nested(500)}}) ==
-          "parts[1].parts[1].parts[1].parts[1].parts: stimuli stand 5 deep in each other\n  Nest at most 4 deep.");
+          "parts[1].parts[1].parts[1].parts[1].parts: stimuli stand 5 deep in each other\n  nest at most 4 deep");
     CHECK(refusal("step", {{"length_samples", std::int64_t{9}}, {"add", nested(5)}}) ==
-          "add[1].parts[1].parts[1].parts[1].parts: stimuli stand 5 deep in each other\n  Nest at most 4 deep.");
+          "add[1].parts[1].parts[1].parts[1].parts: stimuli stand 5 deep in each other\n  nest at most 4 deep");
 }
 
 TEST_CASE("sequence: its length is refused beyond the longest stimulus", "[stimuli]") {
     CHECK(refusal("sequence", {{"parts", list({step(10'000'000'000, 1)})}}) == "accepted");
     CHECK(refusal("sequence", {{"parts", list({step(10'000'000'000, 1), step(1, 1)})}}) ==
           "parts: 1 times 10000000001 samples are more than the longest stimulus, 10000000000\n"
-          "  Make the parts shorter, or repeat them less often.");
+          "  make the parts shorter, or repeat them less often");
     CHECK(refusal("sequence", {{"parts", list({step(5, 1)})}, {"repeat", std::int64_t{2'000'000'001}}}) ==
           "repeat: 2000000001 times 5 samples are more than the longest stimulus, 10000000000\n"
-          "  Make the parts shorter, or repeat them less often.");
+          "  make the parts shorter, or repeat them less often");
     CHECK(refusal("sequence", {{"parts", list({step(5, 1)})}, {"repeat", std::int64_t{2'000'000'000}}}) == "accepted");
 }
 
@@ -143,22 +143,22 @@ TEST_CASE("add: none may be longer, and each is blamed at its own place", "[stim
     };
     CHECK(added(step(10, 1)) == "accepted");
     CHECK(added(step(11, 1)) ==
-          "add[2].length_samples: 11 samples are longer than the 10 that they are added to\n  Give at most 10.");
+          "add[2].length_samples: 11 samples are longer than the 10 that they are added to\n  give at most 10");
     CHECK(added(words("sequence", {{"parts", list({step(6, 1), step(5, 1)})}})) ==
-          "add[2].parts: 11 samples are longer than the 10 that they are added to\n  Give at most 10.");
+          "add[2].parts: 11 samples are longer than the 10 that they are added to\n  give at most 10");
     CHECK(added(words("step", {{"level_ratio", 2.0}})) ==
-          "add[2].level_ratio: 2 of full scale is above the largest, 1 of full scale\n  Give 1 or less.");
+          "add[2].level_ratio: 2 of full scale is above the largest, 1 of full scale\n  give 1 or less");
     CHECK(added(words("step", {{"level_codes", std::int64_t{40000}}})) ==
-          "add[2].level_codes: 40000 is not a code of q15\n  Give a whole number from -32768 to 32767.");
-    CHECK(added(words("setp", {})).find("add[2].shape: no stimulus is called \"setp\"\n  Shapes: step, ") == 0);
+          "add[2].level_codes: 40000 is not a code of q15\n  give a whole number from -32768 to 32767");
+    CHECK(added(words("setp", {})).find("add[2].shape: no stimulus is called \"setp\"\n  shapes: step, ") == 0);
     CHECK(refusal("step", {{"length_samples", std::int64_t{10}}, {"add", list({})}}) ==
-          "add: the array is empty\n  Give at least one stimulus.");
-    CHECK(refusal("step", {{"length_samples", std::int64_t{10}}, {"add", 1.0}}) == "add: needs an array of stimuli");
+          "add: the list is empty\n  give at least one stimulus");
+    CHECK(refusal("step", {{"length_samples", std::int64_t{10}}, {"add", 1.0}}) == "add: needs a list of stimuli");
     CHECK(refusal("sequence", {{"parts", list({step(1, 1), words("step", {})})}}) ==
-          "parts[2].length_samples: is missing, and \"step\" needs it\n  Give a whole number.");
+          "parts[2].length_samples: is missing, and \"step\" needs it\n  give a whole number");
     // Within a sequence in an added one the length is needed again.
     CHECK(added(words("sequence", {{"parts", list({words("step", {})})}})) ==
-          "add[2].parts[1].length_samples: is missing, and \"step\" needs it\n  Give a whole number.");
+          "add[2].parts[1].length_samples: is missing, and \"step\" needs it\n  give a whole number");
 }
 
 TEST_CASE("add: the spectrum is what the summands have, but for tones that end early or may cancel", "[stimuli]") {

@@ -66,28 +66,28 @@ TEST_CASE("square: no spectrum is claimed", "[stimuli]") {
 TEST_CASE("square: one of frequency and period, and levels that last a sample", "[stimuli]") {
     const std::int64_t ten = 10;
     CHECK(refusal("square", {{"length_samples", ten}}) ==
-          "frequency_hz: is missing, and \"square\" needs it\n  Give frequency_hz or period_samples.");
+          "frequency_hz: \"square\" needs frequency_hz or period_samples\n  give one of the two");
     CHECK(refusal("square", {{"length_samples", ten}, {"frequency_hz", 100.0}, {"period_samples", ten}}) ==
-          "period_samples: frequency_hz is given too\n  Keep one of the two.");
+          "period_samples: frequency_hz is given too\n  keep one of the two");
     CHECK(refusal("square", {{"length_samples", ten}, {"frequency_hz", 24001.0}}) ==
           "frequency_hz: 24001 Hz is above Nyquist, 24000 Hz at rate_hz = 48000\n"
-          "  Give a frequency not above Nyquist, or correct rate_hz.");
+          "  give a frequency not above Nyquist, or correct rate_hz");
     CHECK(refusal("square", {{"length_samples", ten}, {"frequency_hz", 24000.0}}) == "accepted");
     CHECK(refusal("square", {{"length_samples", ten}, {"frequency_hz", 4.8e-6}}) == "accepted");
     CHECK(refusal("square", {{"length_samples", ten}, {"frequency_hz", 4.7e-6}}) ==
           "frequency_hz: 4.7e-06 Hz has a period of 10212765957.446808 samples, longer than any stimulus\n"
-          "  Give a higher frequency, or use shape = \"step\".");
+          "  give a higher frequency, or use shape = \"step\"");
     CHECK(refusal("square", {{"length_samples", ten}, {"frequency_hz", 5e-324}}) ==
           "frequency_hz: 5e-324 Hz has a period of inf samples, longer than any stimulus\n"
-          "  Give a higher frequency, or use shape = \"step\".");
+          "  give a higher frequency, or use shape = \"step\"");
     CHECK(refusal("square", {{"length_samples", ten}, {"period_samples", ten}, {"duty", 0.09}}) ==
           "duty: with 0.09 of a period of 10 samples one of the levels lasts less than a sample\n"
-          "  Give a duty nearer to 0.5, or a longer period.");
+          "  give a duty nearer to 0.5, or a longer period");
     CHECK(refusal("square", {{"length_samples", ten}, {"period_samples", ten}, {"duty", 0.1}}) == "accepted");
     CHECK(refusal("square", {{"length_samples", ten}, {"period_samples", ten}, {"duty", 0.9}}) == "accepted");
     CHECK(refusal("square", {{"length_samples", ten}, {"period_samples", ten}, {"duty", 1.0}}) ==
           "duty: with 1 of a period of 10 samples one of the levels lasts less than a sample\n"
-          "  Give a duty nearer to 0.5, or a longer period.");
+          "  give a duty nearer to 0.5, or a longer period");
     CHECK(refusal("square", {{"length_samples", ten}, {"period_samples", ten}, {"duty", 0.0}}) ==
-          "duty: 0 of a period is not above 0 of a period\n  Give more than 0.");
+          "duty: 0 of a period is not above 0 of a period\n  give more than 0");
 }

@@ -47,7 +47,12 @@ public:
             return Error{ErrorKind::input, relative_path, "it lies outside the root " + root,
                          "move the file under the root, or give another --root"};
         }
-        return read(root + "/" + relative_path, cap_bytes);
+        const std::string path = root + "/" + relative_path;
+        auto bytes = read(path, cap_bytes);
+        if (bytes || contents.count(path) > 0 || read_failures.count(path) > 0) return bytes;
+        Error error = bytes.error();
+        error.remedy = "paths in a plan are taken from the root " + root;
+        return error;
     }
     Outcome<std::unique_ptr<InputFile>> open_input(const std::string& path) const override {
         auto bytes = read(path, SIZE_MAX);

@@ -43,7 +43,7 @@ TEST_CASE("catalogue: a moving average takes 1 to 65536 points", "[filters]") {
         CHECK(std::get<MovingAverage>(outcome->design).points == points);
         CHECK_FALSE(outcome->coefficient_fraction_bits);
     }
-    const std::string remedy = "\n  give a whole number within 1 .. 65536";
+    const std::string remedy = "\n  give a whole number from 1 to 65536";
     CHECK(refusal("moving-average", {{"points", whole(0)}}) == "points: 0 points" + remedy);
     CHECK(refusal("moving-average", {{"points", whole(65537)}}) == "points: 65537 points" + remedy);
     CHECK(refusal("moving-average", {}) == "points: points is missing" + remedy);
@@ -65,12 +65,12 @@ TEST_CASE("catalogue: taps come from the plan or from a file, under their own na
 
 TEST_CASE("catalogue: taps that are none are refused", "[filters]") {
     using Numbers = std::vector<double>;
-    CHECK(refusal("fir", {{"taps", Numbers{}}}) == "taps: 0 taps\n  give 1 .. 65536 taps");
-    CHECK(refusal("fir", {{"taps_file", Numbers(65537, 0.1)}}) == "taps_file: 65537 taps\n  give 1 .. 65536 taps");
+    CHECK(refusal("fir", {{"taps", Numbers{}}}) == "taps: 0 taps\n  give 1 to 65536 taps");
+    CHECK(refusal("fir", {{"taps_file", Numbers(65537, 0.1)}}) == "taps_file: 65537 taps\n  give 1 to 65536 taps");
     CHECK(make("fir", {{"taps_file", Numbers(65536, 0.1)}}));
     CHECK(refusal("fir", {{"taps", Numbers{0.0, -0.0}}}) ==
           "taps: all taps are 0\n  at least one tap must differ from 0");
-    const std::string remedy = " is no coefficient\n  each number must lie within -1e+09 .. 1e+09";
+    const std::string remedy = " is no coefficient\n  give numbers from -1e+09 to 1e+09";
     CHECK(refusal("fir", {{"taps_file", Numbers{1.0, std::numeric_limits<double>::quiet_NaN()}}}) ==
           "taps_file: nan" + remedy);
     CHECK(refusal("fir", {{"taps", Numbers{-2e9}}}) == "taps: -2e+09" + remedy);
@@ -86,7 +86,7 @@ TEST_CASE("catalogue: taps that all round to 0 are refused with the bits that wo
     CHECK(refusal("fir", {{"taps", std::vector<double>{1e-30}}, {"coefficient_fraction_bits", whole(62)}}) ==
           "coefficient_fraction_bits: with 62 fraction bits all taps are 0\n"
           "  no number of fraction bits up to 62 is enough: scale the coefficients");
-    const std::string remedy = "\n  give a whole number within 0 .. 62";
+    const std::string remedy = "\n  give a whole number from 0 to 62";
     CHECK(refusal("fir", {{"taps", taps}, {"coefficient_fraction_bits", whole(63)}}) ==
           "coefficient_fraction_bits: 63 is out of range" + remedy);
     CHECK(refusal("fir", {{"taps", taps}, {"coefficient_fraction_bits", whole(-1)}}) ==
@@ -111,13 +111,13 @@ TEST_CASE("catalogue: sections have five numbers, or six with a0 = 1", "[filters
     CHECK(refusal("biquad-cascade", {{"sections_file", std::vector<double>(6, 0.1)}}) ==
           "sections_file: 6 numbers are no whole number of sections\n"
           "  write five numbers a section: b0, b1, b2, a1, a2 (a0 is 1 and left out)");
-    CHECK(refusal("biquad-cascade", {{"sections", Rows{}}}) == "sections: 0 sections\n  give 1 .. 64 sections");
+    CHECK(refusal("biquad-cascade", {{"sections", Rows{}}}) == "sections: 0 sections\n  give 1 to 64 sections");
     CHECK(refusal("biquad-cascade", {{"sections", Rows(65, {1, 0, 0, 0, 0})}}) ==
-          "sections: 65 sections\n  give 1 .. 64 sections");
+          "sections: 65 sections\n  give 1 to 64 sections");
     CHECK(make("biquad-cascade", {{"sections", Rows(64, {1, 0, 0, 0, 0})}}));
     CHECK(refusal("biquad-cascade", {}) == "sections: sections or sections_file is missing\n  give one of them");
     CHECK(refusal("biquad-cascade", {{"sections", Rows{{1, 0, 0, 0, std::numeric_limits<double>::infinity()}}}}) ==
-          "sections: inf is no coefficient\n  each number must lie within -1e+09 .. 1e+09");
+          "sections: inf is no coefficient\n  give numbers from -1e+09 to 1e+09");
     CHECK(
         refusal("biquad-cascade", {{"sections", Rows{{0, 0, 0, -0.5, 0.25}}}}) ==
         "sections: section 1 passes nothing: b0 = 0, b1 = 0, b2 = 0\n  at least one of b0, b1, b2 must differ from 0");

@@ -73,11 +73,11 @@ TEST_CASE("comb: the words of a plan, and those that cannot be", "[filters]") {
     CHECK(made->kind == "comb");
     CHECK(make("comb", {{"delay_samples", whole(65536)}, {"feedback", std::nextafter(1.0, 0.0)}}));
     CHECK(refusal("comb", {{"delay_samples", whole(65537)}, {"forward", 1.0}}) ==
-          "delay_samples: 65537 samples is above the largest, 65536 samples\n  Give 65536 or less.");
+          "delay_samples: 65537 samples is above the largest, 65536 samples\n  give 65536 or less");
     CHECK(refusal("comb", {{"delay_samples", whole(0)}, {"forward", 1.0}}) ==
-          "delay_samples: 0 samples is below the least, 1 samples\n  Give 1 or more.");
+          "delay_samples: 0 samples is below the least, 1 samples\n  give 1 or more");
     CHECK(refusal("comb", {{"forward", 1.0}}) ==
-          "delay_samples: is missing, and \"comb\" needs it\n  Give a whole number.");
+          "delay_samples: is missing, and \"comb\" needs it\n  give a whole number");
     CHECK(refusal("comb", {{"delay_samples", whole(2)}, {"feedback", -1.21}}) ==
           "feedback: the comb is unstable: feedback = -1.21 puts its poles at radius 1.1\n"
           "  feedback must lie between -1 and 1, both left out: 0.999 would do");

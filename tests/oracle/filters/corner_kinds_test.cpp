@@ -74,9 +74,9 @@ TEST_CASE("notch: what is refused", "[filters]") {
     CHECK(refusal("notch", {{"frequency_hz", 600.0}, {"q", 5.0}}, at(1200)) ==
           "frequency_hz: 600 Hz is not below half the sample rate, 600 Hz\n  give less than 600 Hz");
     CHECK(refusal("notch", {{"frequency_hz", 50.0}}, at(1200)) ==
-          "q: is missing, and \"notch\" needs it\n  Give a number.");
+          "q: is missing, and \"notch\" needs it\n  give a number");
     CHECK(refusal("notch", {{"frequency_hz", 50.0}, {"q", 0.0}}, at(1200)) ==
-          "q: 0 is below the least, 0.01\n  Give 0.01 or more.");
+          "q: 0 is below the least, 0.01\n  give 0.01 or more");
     CHECK(refusal("notch", {{"frequency_hz", 1e-8}, {"q", 1e6}}, at(1200)) ==
           "q: 1000000 at 1e-08 Hz at 1200 samples a second makes a notch too narrow for double precision\n"
           "  give a smaller q");
@@ -146,12 +146,12 @@ TEST_CASE("one-pole: what is refused", "[filters]") {
     CHECK(refusal("one-pole", {{"coefficient", 0.5}, {"corner_hz", 3.0}}) ==
           "corner_hz: " + ways + ": more than one is given\n  keep one of them");
     CHECK(make("one-pole", {{"coefficient", 1.0}}));
-    CHECK(refusal("one-pole", {{"coefficient", 1.5}}) == "coefficient: 1.5 is above the largest, 1\n  Give 1 or less.");
+    CHECK(refusal("one-pole", {{"coefficient", 1.5}}) == "coefficient: 1.5 is above the largest, 1\n  give 1 or less");
     CHECK(refusal("one-pole", {{"coefficient", 0.0}}) ==
-          "coefficient: 0 is below the least, 1e-09\n  Give 1e-09 or more.");
+          "coefficient: 0 is below the least, 1e-09\n  give 1e-09 or more");
     CHECK(make("one-pole", {{"shift_bits", whole(29)}}));
     CHECK(refusal("one-pole", {{"shift_bits", whole(30)}}) ==
-          "shift_bits: 30 bits is above the largest, 29 bits\n  Give 29 or less.");
+          "shift_bits: 30 bits is above the largest, 29 bits\n  give 29 or less");
     CHECK(make("one-pole", {{"corner_hz", 599.9}}, at(1200)));
     CHECK(refusal("one-pole", {{"corner_hz", 600.0}}, at(1200)) ==
           "corner_hz: 600 Hz is not below half the sample rate, 600 Hz\n  give less than 600 Hz");
@@ -200,9 +200,9 @@ TEST_CASE("dc blocker: what is refused", "[filters]") {
     CHECK(refusal("dc-blocker", {{"pole", 0.9}, {"corner_hz", 1.0}}) ==
           "corner_hz: pole or corner_hz: both are given\n  keep one of them");
     CHECK(refusal("dc-blocker", {{"pole", 1.0}}) ==
-          "pole: 1 is above the largest, 0.999999999\n  Give 0.999999999 or less.");
+          "pole: 1 is above the largest, 0.999999999\n  give 0.999999999 or less");
     CHECK(refusal("dc-blocker", {{"corner_hz", 700.0}}, at(1200)) ==
           "corner_hz: 700 Hz is not below half the sample rate, 600 Hz\n  give less than 600 Hz");
     CHECK(refusal("dc-blocker", {{"pole", 0.9}, {"gain", std::string("half")}}) ==
-          "gain: \"half\" is not a choice\n  Choices: plain, unity-at-nyquist.");
+          "gain: \"half\" is not a choice\n  choices: plain, unity-at-nyquist");
 }

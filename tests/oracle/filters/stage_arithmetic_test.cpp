@@ -60,9 +60,9 @@ TEST_CASE("arithmetic: every rounding and every format can be said", "[filters]"
         CHECK(made->stage_format->name == format.name);
     }
     CHECK(refusal_of({{"rounding", text("nearest")}}) ==
-          "rounding: \"nearest\" is not a choice\n  Choices: floor, toward-zero, half-up, half-away, half-even.");
+          "rounding: \"nearest\" is not a choice\n  choices: floor, toward-zero, half-up, half-away, half-even");
     CHECK(refusal_of({{"accumulator_bits", whole(65)}}) ==
-          "accumulator_bits: 65 bits is above the largest, 64 bits\n  Give 64 or less.");
+          "accumulator_bits: 65 bits is above the largest, 64 bits\n  give 64 or less");
     CHECK(make_arithmetic(words({{"accumulator_bits", whole(64)}, {"coefficient_fraction_bits", whole(62)}})));
 }
 

@@ -19,12 +19,12 @@ TEST_CASE("stage: channels are those of the signal, each once", "[filters]") {
     REQUIRE(made);
     CHECK(made->channels == std::vector<int>{3, 1});
     CHECK(make("moving-average", {{"points", whole(4)}}, three)->channels.empty());
-    const std::string remedy = "\n  the signal has 3 channels: give whole numbers within 1 .. 3";
+    const std::string remedy = "\n  the signal has 3 channels: give whole numbers from 1 to 3";
     CHECK(given(list({4})) == "channels: there is no channel 4" + remedy);
     CHECK(given(list({1, 0})) == "channels: there is no channel 0" + remedy);
     CHECK(given(list({1.5})) == "channels: there is no channel 1.5" + remedy);
     CHECK(given({}) == "channels: no channel passes this stage" + remedy);
-    CHECK(given(list({2, 3, 2})) == "channels: channel 2 stands twice\n  name each channel once");
+    CHECK(given(list({2, 3, 2})) == "channels: channel 2 is there twice\n  name each channel once");
     CHECK(refusal("moving-average", {{"points", whole(4)}, {"channels", list({2})}}) ==
           "channels: there is no channel 2\n  the signal has 1 channel: leave the list out");
     CHECK(make("moving-average", {{"points", whole(4)}, {"channels", list({1})}}));

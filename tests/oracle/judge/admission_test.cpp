@@ -95,7 +95,7 @@ TEST_CASE("admission: a response rule needs power and bins in each band", "[judg
 
     const auto step = values({{"length_samples", std::int64_t{1000}}});
     CHECK(refused(plan, "step", step, rule(10.0, 20.0))[0].problem ==
-          "case \"a case\" cannot answer a response rule, which is not for a step");
+          "case \"a case\" cannot answer a response rule with shape = \"step\"");
     const auto brief = values({{"length_samples", std::int64_t{63}}});
     CHECK(refused(plan, "noise", brief, rule(10.0, 400.0))[0].problem ==
           "case \"a case\" is too short for a response: 63 samples");

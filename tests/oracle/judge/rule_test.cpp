@@ -37,7 +37,8 @@ TEST_CASE("rule: error limits are read in LSB, fraction of full scale and engine
 TEST_CASE("rule: an error rule without a limit is refused", "[judge]") {
     const Error error = refused("error", {});
     CHECK(to_text(error) ==
-          "kind: an error rule without a limit judges nothing\n  give at least one of max_lsb, rms_lsb, bias_lsb (or "
+          "kind: a rule of kind \"error\" without a limit judges nothing\n  give at least one of max_lsb, rms_lsb, "
+          "bias_lsb (or "
           "_ratio, _unit) and min_snr_db");
 }
 

@@ -40,7 +40,7 @@ TEST_CASE("selection: a pattern that matches nothing lists the names", "[cli]") 
     CHECK(outcome.error().kind == ErrorKind::usage);
     CHECK(to_text(outcome.error()) ==
           "--case: no case is named or matched by 'tare stpe'\n"
-          "  did you mean 'tare step'? The plan's cases are:\n"
+          "  did you mean 'tare step'? the plan's cases are:\n"
           "    tare step\n"
           "    mains hum, half scale\n"
           "    mains hum, full scale\n"

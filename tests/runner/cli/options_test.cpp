@@ -188,7 +188,7 @@ TEST_CASE("options: what is too much or out of range is quoted", "[cli]") {
         CHECK(error_of({"accept", "run", "--samples", samples}) ==
               "--samples: '" + samples + "' is not a whole number from 1 to 1073741824" + hint);
     }
-    CHECK(error_of(with(check_both, {"--verbose=3"})) == "--verbose takes no value\n  leave away what follows it");
+    CHECK(error_of(with(check_both, {"--verbose=3"})) == "--verbose takes no value\n  leave out what follows it");
     for (const std::string seed : {"-5", "1.5", "0x10", "9007199254740992", "18446744073709551616", " 1", "1 "}) {
         CHECK(error_of(with(check_both, {"--seed", seed})) ==
               "--seed: '" + seed + "' is not a whole number from 0 to 9007199254740991" + hint);

@@ -187,7 +187,7 @@ TEST_CASE("baseline: baseline.toml is read as strictly as a plan", "[config]") {
                "\n";
     };
     CHECK(refusal("channels = 1", "chanels = 1") ==
-          told(1, "title = \"CW-7\"", 1, "the file has no channels", "add channels: Channels of the signal.") +
+          told(1, "title = \"CW-7\"", 1, "the file has no channels", "add channels: channels of the signal") +
               told(8, "chanels = 1", 1, "unknown key \"chanels\" in the file", "did you mean channels?"));
     CHECK(refusal("tool_version = \"0.1.0\"\n", "") ==
           told(1, "title = \"CW-7\"", 1, "the file has no tool_version", damaged));

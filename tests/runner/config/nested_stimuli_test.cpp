@@ -80,8 +80,7 @@ TEST_CASE("nested stimuli: a length may be left out of what is added, not of a p
     part.read(outer_recipe());
     CHECK(part.told() ==
           told(2, "parts = [{ shape = \"step\" }]", 10, "parts[1] of shape \"step\" has no length_samples",
-               "add length_samples: " +
-                   std::string(find_parameter(*find_recipe(stimulus_recipes(), "step"), "length_samples")->help)));
+               "add length_samples: number of samples that are sent; a stimulus in add may leave it out"));
 }
 
 TEST_CASE("nested stimuli: each is as strict as one of its own", "[config]") {
@@ -94,7 +93,7 @@ TEST_CASE("nested stimuli: each is as strict as one of its own", "[config]") {
     refusal("parts = []", "[]", "parts is empty", "give it at least one stimulus");
     refusal("parts = [7]", "7", "in parts stands a whole number, wanted tables",
             "write parts = [{ shape = \"step\", ... }, ...], or each under a header");
-    refusal("parts = \"step\"", "\"step\"", "parts is the string \"step\", wanted an array of tables",
+    refusal("parts = \"step\"", "\"step\"", "parts is the string \"step\", wanted a list of tables",
             "write parts = [{ shape = \"step\", length_samples = 100 }, ...]");
     refusal("add = [{ shape = \"step\" }, { shape = \"stop\" }]", "\"stop\"", "shape = \"stop\" is not known",
             "did you mean \"step\"?");
@@ -155,7 +154,7 @@ TEST_CASE("values: a list of whole numbers", "[config]") {
         table.read(outer_recipe());
         CHECK(table.told() == told(2, line, static_cast<int>(line.find(at)) + 1, problem, remedy));
     };
-    refusal("channels = 1", "1", "channels is the whole number 1, wanted an array of whole numbers",
+    refusal("channels = 1", "1", "channels is the whole number 1, wanted a list of whole numbers",
             "write channels = [1, 2]");
     refusal("channels = []", "[]", "channels is empty", "give it at least one number");
     refusal("channels = [1, 2.5]", "2.5", "channels[1] is the number 2.5, wanted a whole number",

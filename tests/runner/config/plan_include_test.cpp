@@ -120,7 +120,7 @@ TEST_CASE("include: problems of an included file show its own line, after those 
     CHECK(plan_problems(with(plan, "points = 4", "pionts = 4"),
                         shared(with(common, "length_samples = 64", "length_samples = 0"))) ==
           "plan.toml:5:1: [[filter]] of kind \"moving-average\" has no points\n    [[filter]]\n    ^\n"
-          "  add points: How many samples are averaged, the newest included.\n"
+          "  add points: how many samples are averaged, the newest included\n"
           "plan.toml:7:1: unknown key \"pionts\" in [[filter]] of kind \"moving-average\"\n    pionts = 4\n    ^\n"
           "  did you mean points?\n"
           "./shared/common.toml:14:18: length_samples = 0 is below 1\n    length_samples = 0\n                     ^\n"
@@ -175,7 +175,7 @@ TEST_CASE("include: a file that is missing or no plan is refused at its line, an
     CHECK(plan_problems(plan) ==
           "plan.toml:2:12: include \"shared/common.toml\": there is no such file\n"
           "    include = [\"shared/common.toml\"]\n               ^\n"
-          "  check the path; it is taken from the current folder\n");
+          "  paths in a plan are taken from the root .\n");
     CHECK(plan_problems(plan, shared("[signal]\ninput = q15\n")) ==
           "plan.toml:2:12: include \"shared/common.toml\": the file is no plan\n"
           "    include = [\"shared/common.toml\"]\n               ^\n"

@@ -155,14 +155,14 @@ TEST_CASE("plan: a case has labels", "[config]") {
         const std::string text = with_lines(tare, "labels = " + value + "\n");
         CHECK(plan_problems(text) == message(text, 30, at, problem, remedy));
     };
-    refusal("\"quick\"", "\"quick\"", "labels is a string, wanted an array of strings", "write labels = [\"quick\"]");
+    refusal("\"quick\"", "\"quick\"", "labels is a string, wanted a list of strings", "write labels = [\"quick\"]");
     refusal("[]", "[]", "labels is empty", "give a label, or leave it out");
     refusal("[1]", "1", "in labels stands a whole number, wanted strings", "write labels = [\"quick\"]");
     refusal("[\"a b\"]", "\"a b\"", "\"a b\" is no label", "use letters, digits, - and _, at most 40");
     refusal("[\"\"]", "\"\"", "\"\" is no label", "use letters, digits, - and _, at most 40");
     refusal("[\"x" + forty + "\"]", "\"x", "\"x" + forty + "\" is no label",
             "use letters, digits, - and _, at most 40");
-    refusal("[\"a\", \"b\", \"a\"]", "\"a\"]", "the label \"a\" stands here twice", "keep one of the two");
+    refusal("[\"a\", \"b\", \"a\"]", "\"a\"]", "the label \"a\" is there twice", "keep one of the two");
 }
 
 TEST_CASE("plan: settings of the firmware, under a header or in braces", "[config]") {

@@ -117,18 +117,19 @@ TEST_CASE("rig: numbers out of range, wrong types, unknown and missing keys", "[
     refused("port = \"usb:0403:6001\"", "port = 3", 6, "3", "port is the whole number 3, wanted a string",
             "write port = \"...\"");
     refused("port = \"usb:0403:6001\"\n", "", 4, "[link]", "[link] has no port",
-            "add port: A stable name as `halflsb ports` lists them (usb:VID:PID or usb:VID:PID:SERIAL), or the path of "
-            "a device; one that starts with ./ is taken from the rig's folder.");
+            "add port: a stable name as `halflsb ports` lists them (usb:VID:PID or usb:VID:PID:SERIAL), or the path of "
+            "a device; one that starts with ./ is taken from the rig's folder");
     refused("name = \"CW-7, bench 3\"", "nmae = \"x\"\nname = \"y\"", 2, "nmae", "unknown key \"nmae\" in [board]",
             "did you mean name?");
     refused("[wire]\nform = \"framed\"\n", "", 1, "[board]", "the file has no [wire]",
             "add it; docs/plan.md and docs/rig.md show how");
     refused("[wire]\n", "[wire]\nname = \"x\"\n", 8, "name", "unknown key \"name\" in [wire]",
             "known here: form, block_samples, answer_s and greet_s");
-    for (const std::string port :
-         {"usb:", "usb:0403", "usb:0403:", "usb:04035:6001", "usb:0403:600g", "usb:0403:6001:"}) {
+    for (const std::string port : {"usb:", "usb:0403", "usb:403:6001", "usb:0403:601", "usb:0403:", "usb:04035:6001",
+                                   "usb:0403:600g", "usb:0403:6001:"}) {
         refused("usb:0403:6001", port, 6, "\"" + port, "port = \"" + port + "\" is no name of a USB port",
-                "write usb:VID:PID or usb:VID:PID:SERIAL, vendor and product in hex; halflsb ports lists them");
+                "write usb:VID:PID or usb:VID:PID:SERIAL with four hex digits each, as in usb:0403:6001; "
+                "halflsb ports lists them");
     }
 }
 

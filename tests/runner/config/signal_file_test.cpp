@@ -151,7 +151,7 @@ TEST_CASE("signal file: a missing sample shows in the times", "[config]") {
 
 TEST_CASE("signal file: ragged rows, text, NaN, gaps and decimal commas are refused at their place", "[config]") {
     CHECK(refusal_of("1,2\n3\n") ==
-          std::string("root/w.csv:2:1: 1 columns in this line, 2 in those above\n    3\n    ^") + how);
+          std::string("root/w.csv:2:1: 1 column in this line, 2 in those above\n    3\n    ^") + how);
     CHECK(refusal_of("1,2\n3,4,5\n") ==
           std::string("root/w.csv:2:5: 3 columns in this line, 2 in those above\n    3,4,5\n        ^") + how);
     CHECK(refusal_of("1\n2\nx3\n") == std::string("root/w.csv:3:1: \"x3\" is not one number\n    x3\n    ^") + how);

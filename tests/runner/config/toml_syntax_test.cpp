@@ -64,7 +64,7 @@ TEST_CASE("toml: each kind of slip says what to write", "[config]") {
           "plan.toml:1:13: the file ends inside a string\n    title = \"abc\n                ^\n  close the string "
           "with a quotation mark\n");
     CHECK(slip("x = [1, 2") ==
-          "plan.toml:1:10: the file ends inside an array\n    x = [1, 2\n             ^\n  close the array with ]\n");
+          "plan.toml:1:10: the file ends inside a list\n    x = [1, 2\n             ^\n  close the list with ]\n");
     CHECK(slip("x = { a = 1") ==
           "plan.toml:1:12: the file ends inside an inline table\n    x = { a = 1\n               ^\n  close the table "
           "with }\n");

@@ -75,14 +75,14 @@ TEST_CASE("ports: what cannot be found says what is there", "[link]") {
     CHECK(device_or_text("usb:1234:5678") ==
           "usb:1234:5678: no such port; the ports seen: /dev/ttyS0, /dev/ttyUSB0 (usb:0403:6001:A50285BI), "
           "/dev/ttyUSB1 (usb:0403:6001:B7), /dev/ttyACM0 (usb:0483:374b)\n"
-          "  correct `port` in the rig, or plug the board in; `halflsb ports` lists the ports");
+          "  correct port in the rig, or plug the board in; halflsb ports lists the ports");
     CHECK(device_or_text("usb:1234:5678", {}) ==
           "usb:1234:5678: no such port; this machine has no serial port now\n"
           "  plug the board in, and check the cable: some carry power only");
     CHECK(device_or_text("usb:0403:6001") ==
           "usb:0403:6001: more than one port has this name: /dev/ttyUSB0 (usb:0403:6001:A50285BI), /dev/ttyUSB1 "
           "(usb:0403:6001:B7)\n"
-          "  add the serial number to `port` in the rig: usb:VID:PID:SERIAL");
+          "  add the serial number to port in the rig: usb:VID:PID:SERIAL");
 }
 
 TEST_CASE("ports: malformed stable names are an input error", "[link]") {
@@ -96,6 +96,6 @@ TEST_CASE("ports: malformed stable names are an input error", "[link]") {
               std::string(name) + ": \"" + name +
                   "\" is not a stable name of a serial port\n"
                   "  write usb:VID:PID or usb:VID:PID:SERIAL with four hex digits each, as in usb:0403:6001; "
-                  "`halflsb ports` lists them");
+                  "halflsb ports lists them");
     }
 }

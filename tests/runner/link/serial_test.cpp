@@ -339,8 +339,8 @@ TEST_CASE("serial: what is no terminal is refused", "[link]") {
         CHECK(error.kind == ErrorKind::bench);
         CHECK(to_text(error) == path +
                                     ": this is not a serial port: it is no terminal device\n"
-                                    "  `port` in the rig names a device such as /dev/ttyUSB0, or a stable name; "
-                                    "`halflsb ports` lists them");
+                                    "  port in the rig names a device such as /dev/ttyUSB0, or a stable name; "
+                                    "halflsb ports lists them");
     }
     std::ifstream check(file);
     std::string text;

@@ -169,7 +169,7 @@ TEST_CASE("failures: a reset that took effect elsewhere", "[wire]") {
     std::string problem;
     std::uint8_t type = 0x91;
     std::vector<std::uint8_t> answer{0, 0, 9, 0, 0, 0, 0, 0, 0, 0};
-    SECTION("at another sample") { problem = "the board did RESET before sample 0 before sample 9"; }
+    SECTION("at another sample") { problem = "asked for RESET before sample 0, the board did it before sample 9"; }
     SECTION("with samples") {
         type = 0x90;
         answer.assign(11, 0);

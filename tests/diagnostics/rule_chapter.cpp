@@ -1,0 +1,114 @@
+// What a rule can be refused for, by itself and with the stimulus of its case.
+#include <limits>
+#include <string>
+#include <vector>
+
+#include "oracle/judge/rule.hpp"
+#include "tests/diagnostics/plan_page.hpp"
+
+namespace halflsb::diagnostics {
+
+namespace {
+
+struct Body {
+    std::string_view done, stimulus, rules;
+};
+
+const std::string_view noise = "shape = \"noise\"\nlength_samples = 4096\n";
+
+const std::vector<Body> bodies = {
+    {"bands that are no list", noise, "[[case.rule]]\nkind = \"response\"\nbands = 3\n"},
+    {"no band", noise, "[[case.rule]]\nkind = \"response\"\nbands = []\n"},
+    {"a band that is a number", noise, "[[case.rule]]\nkind = \"response\"\nbands = [3]\n"},
+    {"bands that contradict each other", noise,
+     "[[case.rule]]\nkind = \"response\"\nbands = [{ from_hz = 0, to_hz = 50, max_db = -3 },\n"
+     "         { from_hz = 50, to_hz = 90, min_db = -1 }]\n"},
+    {"bands that contradict each other in a range", noise,
+     "[[case.rule]]\nkind = \"response\"\nbands = [{ from_hz = 0, to_hz = 70, max_db = -3 },\n"
+     "         { from_hz = 50, to_hz = 90, min_db = -1 }]\n"},
+    {"a response of a step", "shape = \"step\"\nlength_samples = 256\n",
+     "[[case.rule]]\nkind = \"response\"\nbands = [{ from_hz = 1, to_hz = 9, max_db = 1 }]\n"},
+    {"a response of a short noise", "shape = \"noise\"\nlength_samples = 63\n",
+     "[[case.rule]]\nkind = \"response\"\nbands = [{ from_hz = 1, to_hz = 90, max_db = 1 }]\n"},
+    {"a response between the bins", noise,
+     "[[case.rule]]\nkind = \"response\"\nbands = [{ from_hz = 10.1, to_hz = 10.2, max_db = 1 }]\n"},
+    {"a response where the sine is not", "shape = \"sine\"\nlength_samples = 4096\nfrequency_hz = 50\n",
+     "[[case.rule]]\nkind = \"response\"\nbands = [{ from_hz = 60, to_hz = 90, max_db = 1 }]\n"},
+    {"a response of tones that lie too close",
+     "shape = \"multitone\"\nlength_samples = 256\nfrequencies_hz = [50, 51]\n",
+     "[[case.rule]]\nkind = \"response\"\nbands = [{ from_hz = 40, to_hz = 90, max_db = 1 }]\n"},
+    {"two latencies", noise,
+     "[[case.rule]]\nkind = \"latency\"\nlatency_samples = 0\n[[case.rule]]\nkind = \"latency\"\nlatency_samples = "
+     "1\n"},
+    {"a latency that the window does not reach", noise, "[[case.rule]]\nkind = \"latency\"\nlatency_samples = 65\n"},
+    {"a latency of a short case", "shape = \"noise\"\nlength_samples = 8\n",
+     "[[case.rule]]\nkind = \"latency\"\nlatency_samples = 20\n"},
+    {"a latency of a step that is too low", "shape = \"step\"\nlength_samples = 256\nlevel_codes = 3\n",
+     "[[case.rule]]\nkind = \"latency\"\nlatency_samples = 0\n"},
+    {"a latency that nothing tells within the limits", noise,
+     "[[case.rule]]\nkind = \"latency\"\nlatency_samples = 0\n[[case.rule]]\nkind = \"error\"\nrms_lsb = 30000\n"},
+    {"a latency of a long case that begins in silence",
+     "shape = \"impulse\"\nlength_samples = 300000\nat_samples = 299999\n",
+     "[[case.rule]]\nkind = \"latency\"\nlatency_samples = 0\n"},
+    {"an error without a limit", noise, "[[case.rule]]\nkind = \"error\"\n"},
+    {"a limit twice", noise, "[[case.rule]]\nkind = \"error\"\nmax_lsb = 1\nmax_ratio = 0.1\n"},
+    {"a limit in a unit that is nowhere explained", noise, "[[case.rule]]\nkind = \"error\"\nmax_unit = 1\n"},
+};
+
+/// Of words that never went through a plan: the reader has refused most of these before.
+void show_words(Page& page) {
+    const RuleContext context{1200.0, true, 32768.0, std::nullopt};
+    page.show("a kind that is none", make_rule("wavelet", {}, context));
+    const auto band = [&](std::string_view done, std::vector<double> row) {
+        ParameterValues values;
+        values.set("bands", std::vector<std::vector<double>>{std::move(row)});
+        page.show(done, make_rule("response", values, context));
+    };
+    constexpr double none = std::numeric_limits<double>::infinity();
+    band("a band of three numbers", {1.0, 2.0, 3.0});
+    band("a band that runs backwards", {90.0, 10.0, -1.0, 1.0});
+    band("a band above Nyquist", {90.0, 700.0, -1.0, 1.0});
+    band("a band without a limit", {10.0, 90.0, -none, none});
+    band("limits that cross", {10.0, 90.0, 1.0, -1.0});
+    ParameterValues values;
+    values.set("bands", std::vector<std::vector<double>>{});
+    page.show("no band", make_rule("response", values, context));
+}
+
+}  // namespace
+
+void rule_chapter(Page& page) {
+    page.chapter("The rules");
+    for (const Body& body : bodies) {
+        Parts parts;
+        parts.stimulus = body.stimulus;
+        parts.after = body.rules;
+        show_plan(page, body.done, parts.text());
+    }
+    Parts parts;
+    parts.rule = "kind = \"latency\"\nlatency_samples = 0\n";
+    parts.stimulus = "shape = \"silence\"\nlength_samples = 256\n";
+    show_plan(page, "a latency of all cases that none can tell", parts.text());
+    parts = {};
+    parts.rule = "kind = \"response\"\nbands = [{ from_hz = 10, to_hz = 500, max_db = 3 }]\n";
+    parts.of_case = "rate_hz = 600.0\n";
+    show_plan(page, "a band of all cases above Nyquist of one", parts.text());
+    parts = {};
+    parts.signal = "rate_hz = 1200.0\ninput = \"f32\"\noutput = \"f32\"\n";
+    show_plan(page, "a limit in steps of a float format", parts.text());
+    parts = {};
+    parts.of_case = "start = \"running\"\ndiscard_samples = 64\n";
+    parts.after = "[[case.rule]]\nkind = \"unchanged\"\n";
+    show_plan(page, "an unchanged response of a case that starts running", parts.text());
+    parts = {};
+    parts.filter = "kind = \"unknown\"\n";
+    parts.rule = "kind = \"unchanged\"\nmax_lsb = 0\n";
+    show_plan(page, "no rule left",
+              spoilt(parts.text(), "[[rule]]\nkind = \"unchanged\"\nmax_lsb = 0\n", "") +
+                  "[[case]]\nname = \"second\"\n[case.stimulus]\nshape = \"step\"\n"
+                  "length_samples = 9\n[[case.rule]]\nkind = \"unchanged\"\n");
+    page.chapter("The rules, made without a plan");
+    show_words(page);
+}
+
+}  // namespace halflsb::diagnostics

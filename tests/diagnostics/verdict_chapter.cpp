@@ -1,0 +1,252 @@
+// Why a rule failed or is undecided, as the report says it, and what stands at the end of a run.
+#include <algorithm>
+#include <bit>
+#include <limits>
+#include <string>
+#include <utility>
+#include <vector>
+
+#include "oracle/arithmetic/declared.hpp"
+#include "oracle/judge/admission.hpp"
+#include "oracle/judge/case_judge.hpp"
+#include "runner/config/plan_file.hpp"
+#include "runner/report/rule_report.hpp"
+#include "runner/report/terminal_report.hpp"
+#include "tests/diagnostics/plan_page.hpp"
+#include "tests/runner/report/sample_run.hpp"
+#include "tests/support/accepted.hpp"
+
+namespace halflsb::diagnostics {
+
+namespace {
+
+const TextStyle style{false, 110, false};
+
+Parts small(const std::string& rules, const std::string& stimulus = "shape = \"noise\"\nlength_samples = 1000\n") {
+    Parts parts;
+    parts.rule = "kind = \"error\"\nmax_lsb = 0.5\n";
+    parts.stimulus = stimulus;
+    parts.after = rules;
+    return parts;
+}
+
+Plan plan_of(Page& page, std::string_view done, const Parts& parts) {
+    FakeFiles files;
+    files.contents["plan.toml"] = parts.text();
+    auto read = read_plan("plan.toml", files);
+    if (const auto* problems = std::get_if<ReadProblems>(&read)) {
+        page.show(done, problems->texts.front());
+        page.missing(done);
+        return {};
+    }
+    return std::get<Plan>(std::move(read));
+}
+
+/// What a right board returns.
+std::vector<Code> right_response(const Plan& plan) {
+    const Case& the_case = plan.cases.front();
+    const auto channels = static_cast<std::size_t>(plan.signal.channels);
+    const auto length = static_cast<std::size_t>(the_case.stimulus->length_samples());
+    std::vector<Code> codes(length * channels), all(length * channels);
+    fill_case_codes(plan, the_case, 0, codes);
+    for (std::size_t c = 0; c < channels; ++c) {
+        std::vector<Code> one(length);
+        std::vector<double> in(length), out(length);
+        for (std::size_t n = 0; n < length; ++n) one[n] = codes[n * channels + c];
+        values_of(plan.signal.input, one, in);
+        if (plan.filter_is_unknown) {
+            out = in;
+        } else {
+            make_declared_filter(chain_of(plan, the_case, static_cast<int>(c) + 1), plan.signal.output, 1.0)
+                ->process(in, out);
+        }
+        for (std::size_t n = 0; n < length; ++n)
+            all[n * channels + c] = code_of(plan.signal.output, out[n], Rounding::half_up);
+    }
+    return all;
+}
+
+/// The blocks of the rules that did not pass, as the report has them; of those that passed their reason.
+std::string judged(const Plan& plan, const std::vector<Code>& response) {
+    CaseJudge judge(plan, plan.cases.front());
+    judge.add(response);
+    const auto judgement = judge.finish([&](std::int64_t first, std::span<Code> codes) -> Outcome<void> {
+        std::copy_n(response.begin() + first * plan.signal.channels, codes.size(), codes.begin());
+        return {};
+    });
+    if (!judgement) return to_text(judgement.error());
+    std::string text;
+    for (const RuleVerdict& rule : judgement->rules) {
+        if (rule.verdict != Verdict::pass) {
+            text += rule_block(rule, plan.signal, style);
+        } else if (!rule.reason.empty()) {
+            text += rule_title(rule) + ": pass; " + rule.reason + "\n";
+        }
+    }
+    return text;
+}
+
+using Spoil = std::vector<Code> (*)(std::vector<Code>);
+
+std::vector<Code> delayed(std::vector<Code> response, std::size_t samples) {
+    response.insert(response.begin(), samples, 0);
+    response.resize(response.size() - samples);
+    return response;
+}
+
+void show_rules(Page& page) {
+    const auto show = [&](std::string_view done, const Parts& parts, Spoil spoil) {
+        const Plan plan = plan_of(page, done, parts);
+        if (!plan.cases.empty()) page.show(done, judged(plan, spoil(right_response(plan))));
+    };
+    const auto as_it_is = [](std::vector<Code> r) { return r; };
+    show("one code is wrong", small(""), [](std::vector<Code> r) { return r[500] += 3, r; });
+    show("a response that comes a sample late", small(""), [](std::vector<Code> r) { return delayed(r, 1); });
+    show("a response that comes 64 samples late", small(""), [](std::vector<Code> r) { return delayed(r, 64); });
+    show("a response that has nothing to do with it", small(""), [](std::vector<Code> r) {
+        for (std::size_t n = 0; n < r.size(); ++n) r[n] = static_cast<Code>(n * 7919 % 20011) - 10000;
+        return r;
+    });
+    show("no signal, and a signal-to-noise ratio to hold",
+         small("[[case.rule]]\nkind = \"error\"\nmin_snr_db = 60\n", "shape = \"silence\"\nlength_samples = 100\n"),
+         [](std::vector<Code> r) { return r[50] = 1, r; });
+    show("no signal, and none came back",
+         small("[[case.rule]]\nkind = \"error\"\nmin_snr_db = 60\n", "shape = \"silence\"\nlength_samples = 100\n"),
+         as_it_is);
+    const std::string bands =
+        "[[case.rule]]\nkind = \"response\"\nbands = [{ from_hz = 10, to_hz = 100, min_db = -1, max_db = 1 }]\n";
+    show("a gain outside its band", small(bands, "shape = \"noise\"\nlength_samples = 8192\n"),
+         [](std::vector<Code> r) {
+             for (Code& code : r) code /= 2;
+             return r;
+         });
+    Parts floats = small(bands, "shape = \"noise\"\nlength_samples = 8192\n");
+    floats.signal = "rate_hz = 1200.0\ninput = \"f32\"\noutput = \"f32\"\n";
+    floats.rule = "kind = \"error\"\nmax_ratio = 0.001\n";
+    show("a response that is not a number", floats, [](std::vector<Code> r) {
+        r[500] = std::bit_cast<Code>(std::numeric_limits<float>::quiet_NaN());
+        return r;
+    });
+    show("a response of nothing", small(bands, "shape = \"sine\"\nlength_samples = 1200\nfrequency_hz = 50\n"),
+         [](std::vector<Code> r) { return std::vector<Code>(r.size()); });
+}
+
+/// What the reader of plans does not let come so far.
+void show_the_rest(Page& page) {
+    Plan plan = plan_of(page, "no sample", small(""));
+    page.show("no sample", judged(plan, {}));
+    plan.filter_is_unknown = true;
+    page.show("an error rule of an unknown filter", judged(plan, right_response(plan)));
+    plan = plan_of(page, "a band without power",
+                   small("[[case.rule]]\nkind = \"response\"\nbands = [{ from_hz = 40, to_hz = 60, max_db = 1 }]\n",
+                         "shape = \"sine\"\nlength_samples = 1200\nfrequency_hz = 50\n"));
+    for (Rule& rule : plan.cases.front().rules) {
+        if (auto* response = std::get_if<ResponseRule>(&rule.kind)) response->bands.front().from_hz = 55.0;
+    }
+    page.show("a band without power", judged(plan, right_response(plan)));
+    Case& the_case = plan.cases.front();
+    the_case.start = Start::running;
+    the_case.start_samples = 1200;
+    for (const Refusal& refusal : refusals(plan, the_case))
+        page.show("every sample discarded", refusal.problem + "\n  " + refusal.remedy);
+}
+
+void show_unchanged(Page& page) {
+    Parts parts = small("[[case.rule]]\nkind = \"unchanged\"\n");
+    parts.rule = "kind = \"latency\"\nlatency_samples = 0\n";
+    const auto with = [&](std::string_view done, std::optional<double> max_lsb, std::size_t kept, std::size_t block,
+                          void (*change)(AcceptedResponse&), Spoil spoil, int channels = 1) {
+        Parts own = parts;
+        if (channels > 1) own.signal += "channels = 2\n";
+        Plan plan = plan_of(page, done, own);
+        if (plan.cases.empty()) return;
+        const auto response = right_response(plan);
+        AcceptedResponse accepted = test::accepted(plan, plan.cases.front(), response, kept, block);
+        change(accepted);
+        plan.cases.front().rules = {test::unchanged_rule(std::move(accepted), max_lsb)};
+        page.show(done, judged(plan, spoil(response)));
+    };
+    const auto nothing = [](AcceptedResponse&) {};
+    const auto as_it_is = [](std::vector<Code> r) { return r; };
+    const auto at_500 = [](std::vector<Code> r) { return r[500] += 3, r; };
+    const auto at_500_and_501 = [](std::vector<Code> r) { return r[500] += 3, r[501] -= 4, r; };
+    with("the same again", std::nullopt, 1000, 0, nothing, as_it_is);
+    with("one sample differs", std::nullopt, 1000, 0, nothing, at_500);
+    with("two samples differ, on the second of two channels", std::nullopt, 1000, 0, nothing, at_500_and_501, 2);
+    with("a difference behind the kept samples, with hashes of stretches", std::nullopt, 400, 100, nothing, at_500);
+    with("a difference behind the kept samples, with one hash", std::nullopt, 400, 0, nothing, at_500);
+    with("a difference in the kept samples of a longer case", std::nullopt, 600, 100, nothing, at_500_and_501);
+    with("a difference beyond max", 2.0, 1000, 0, nothing, at_500);
+    with("a difference beyond max on one of two channels", 2.0, 1000, 0, nothing, at_500, 2);
+    with("a difference that cannot be told from its hash", 5.0, 400, 100, nothing, at_500);
+    with(
+        "another length", std::nullopt, 1000, 0, [](AcceptedResponse& a) { a.samples = 1200; }, as_it_is);
+    with(
+        "another stimulus", std::nullopt, 1000, 0, [](AcceptedResponse& a) { a.stimulus_sha256 = "x"; }, as_it_is);
+    with(
+        "no hash", std::nullopt, 1000, 0, [](AcceptedResponse& a) { a.response_sha256.clear(); }, as_it_is);
+    with(
+        "more kept than there are", std::nullopt, 1000, 0, [](AcceptedResponse& a) { a.samples = 999; }, as_it_is);
+    with(
+        "hashes of stretches that are too few", std::nullopt, 400, 100,
+        [](AcceptedResponse& a) { a.block_sha256.pop_back(); }, as_it_is);
+    with(
+        "kept samples that the hash contradicts", std::nullopt, 1000, 0,
+        [](AcceptedResponse& a) { a.response_sha256 = "x"; }, as_it_is);
+    with(
+        "a hash that the kept samples contradict", std::nullopt, 1000, 0, [](AcceptedResponse& a) { a.kept[500] += 1; },
+        as_it_is);
+    const Plan plan = plan_of(page, "no baseline yet", parts);
+    page.show("no baseline yet", judged(plan, right_response(plan)));
+    Plan running = plan_of(page, "a case that starts running", parts);
+    running.cases.front().start = Start::running;
+    running.cases.front().rules = {
+        test::unchanged_rule(test::accepted(running, running.cases.front(), right_response(running), 1000))};
+    page.show("a case that starts running", judged(running, right_response(running)));
+    Plan none = plan_of(page, "no accepted run", parts);
+    none.cases.front().rules = {{UnchangedRule{}, {"plan.toml", 30, 1}}};
+    page.show("no accepted run", judged(none, right_response(none)));
+}
+
+void show_summaries(Page& page) {
+    const auto summary = [&](std::string_view done, const RunResult& run) {
+        std::string text = summary_text(run, style);
+        page.show(done, text);
+    };
+    RunResult run = sample::run();
+    page.show("an invalid case", case_text(run, 2, style));
+    run.cases[2].invalid.reset();
+    page.show("an invalid case without a reason", case_text(run, 2, style));
+    run.cases[0].grade = Grade::plausible;
+    run.cases[0].start = Start::running;
+    run.cases[0].start_samples = 1;
+    page.show("a case whose capture is plausible", case_text(run, 0, style));
+    page.show("a firmware that was not compared", board_text(run, std::nullopt, style));
+    run.firmware = {FirmwareCheck::State::agrees, "cw7.elf", "3fa2b19c", true};
+    run.board.serial.clear();
+    page.show("a firmware that was there already, on a board without a serial number",
+              board_text(run, std::nullopt, style));
+    for (const std::string_view injection : {"buffer", "converter", "probe"})
+        page.show("samples enter at: " + std::string(injection), not_seen_from(injection));
+    run.firmware.state = FirmwareCheck::State::not_verified;
+    run.firmware.image_file.clear();
+    run.ended_by = Error{ErrorKind::interrupted, "", "it was interrupted", ""};
+    summary("a run that was interrupted", run);
+    run.firmware.image_file = "cw7.elf";
+    run.cases.clear();
+    summary("a run without a case, and an image that was not seen to run", run);
+}
+
+}  // namespace
+
+void verdict_chapter(Page& page) {
+    page.chapter("Rules that fail or are undecided");
+    show_rules(page);
+    show_the_rest(page);
+    page.chapter("Responses that are to be unchanged");
+    show_unchanged(page);
+    page.chapter("What stands in the report of a run");
+    show_summaries(page);
+}
+
+}  // namespace halflsb::diagnostics
