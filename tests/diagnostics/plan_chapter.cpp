@@ -117,6 +117,10 @@ const std::vector<Change>& changes() {
         {"a stimulus after a rule of its case", "[case.stimulus]\nshape = \"noise\"\nlength_samples = 4096\nseed = 7\n",
          "[[case.rule]]\nkind = \"latency\"\nlatency_samples = 0\n[case.stimulus]\nshape = \"noise\"\n"
          "length_samples = 4096\n"},
+        {"the arithmetic of an unknown filter", "kind = \"fir\"\ntaps = [0.25, 0.5, 0.25]",
+         "kind = \"unknown\"\n[filter.arithmetic]\nrounding = \"floor\""},
+        {"words between stages of another kind of value", "taps = [0.25, 0.5, 0.25]",
+         "taps = [0.25, 0.5, 0.25]\n[filter.arithmetic]\nstage_format = \"i32\""},
         {"a date", "full_scale_unit = 6000.0", "full_scale_unit = 2026-12-01"},
     };
     return all;
@@ -148,6 +152,13 @@ void plan_chapter(Page& page) {
         if (change.done == "taps twice") files.contents["./taps.txt"] = "1\n";
         show_plan(page, change.done, text, files);
     }
+    std::string long_chain = good_plan;
+    for (int i = 0; i < 32; ++i) long_chain += "[[filter]]\nkind = \"moving-average\"\npoints = 2\n";
+    show_plan(page, "a chain of 33 stages", long_chain);
+    show_plan(
+        page, "words between stages of fractions, for a signal of codes",
+        spoilt(spoilt(spoilt(good_plan, "input = \"q15\"", "input = \"i16\""), "output = \"q15\"", "output = \"i16\""),
+               "taps = [0.25, 0.5, 0.25]", "taps = [0.25, 0.5, 0.25]\n[filter.arithmetic]\nstage_format = \"q31\""));
     FakeFiles files;
     files.contents["plan.toml"] = good_plan;
     page.show("--root that is not there",

@@ -99,6 +99,7 @@ void show_documents(Page& page) {
         d["cases"][1]["name"] = d["cases"][0]["name"];
         d["verdict"]["cases"][1]["name"] = d["cases"][0]["name"];
     });
+    edited("no case planned", [](Document& d) { d["cases_planned"] = nlohmann::ordered_json::array(); });
     edited("more cases than were planned", [](Document& d) { d["cases_planned"] = {"tare step"}; });
     std::string deep;
     for (int i = 0; i < 200; ++i) deep += '[';

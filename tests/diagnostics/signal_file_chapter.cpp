@@ -120,6 +120,7 @@ struct Use {
 void show_uses(Page& page) {
     FakeFiles files;
     files.contents["./two.csv"] = "raw,filtered\n1,2\n3,4\n";
+    files.contents["./timed.csv"] = "time_s,raw\n0.0,1\n0.000833333,2\n0.001666667,3\n";
     files.contents["./five.csv"] = "1\n2\n3\n4\n5\n";
     files.contents["./large.csv"] = "1\n40000\n";
     files.contents["./ratios.csv"] = "0.5\n1.5\n";
@@ -130,6 +131,7 @@ void show_uses(Page& page) {
         {"a number for a file", q15, "file = 3\n"},
         {"two columns and no word which", q15, "file = \"two.csv\"\n"},
         {"a column that is not there", q15, "file = \"two.csv\"\ncolumn = \"row\"\n"},
+        {"the column of the times", q15, "file = \"timed.csv\"\ncolumn = \"1\"\n"},
         {"more samples than the file has", q15, "file = \"five.csv\"\nlength_samples = 6\n"},
         {"a file repeated beyond the longest stimulus", q15, "file = \"five.csv\"\nrepeat = 10000000000\n"},
         {"a code beyond the format", q15, "file = \"large.csv\"\n"},
@@ -147,6 +149,11 @@ void show_uses(Page& page) {
         parts.stimulus = "shape = \"file\"\n" + std::string(use.stimulus);
         show_plan(page, use.done, parts.text(), files);
     }
+    Parts shorter;
+    shorter.signal = "rate_hz = 1200.0\n" + std::string(q15);
+    shorter.rule = "kind = \"error\"\nmax_lsb = 1\n";
+    shorter.stimulus = "shape = \"step\"\nlength_samples = 3\nadd = [{ shape = \"file\", file = \"five.csv\" }]\n";
+    show_plan(page, "a file added to a shorter stimulus", shorter.text(), files);
     // Files that were never read from a disk.
     const auto made = [&](std::string_view done, SignalFile file) {
         ParameterValues values;

@@ -116,7 +116,8 @@ TEST_CASE("add: sample by sample, an added one takes the length of what it is ad
                  {"level_codes", std::int64_t{100}},
                  {"add", list({words("impulse", {{"at_samples", std::int64_t{2}}, {"level_codes", std::int64_t{5}}}),
                                words("file", {{"file", one_file({1, 2, 3})}, {"at_samples", std::int64_t{1}}}),
-                               words("file", {{"file", one_file(std::vector<double>(50, 1000))}})})}});
+                               words("file", {{"file", one_file(std::vector<double>(50, 1000))},
+                                              {"length_samples", std::int64_t{6}}})})}});
     CHECK(sum->length_samples() == 6);
     CHECK(codes_of(*sum, "q15", -1, 8) == std::vector<Code>{0, 1100, 1101, 1107, 1103, 1100, 1100, 0});
     const auto inner =

@@ -29,6 +29,16 @@ class Refusals(Case):
         self.assertEqual(status, 0)
         self.assertIn("isolated = true", text)
 
+    def test_a_resolved_plan_is_toml_and_no_json_document(self):
+        plan = self.plan(NOISE)
+        done = halflsb("predict", plan, "--resolved")
+        self.assert_status(done, 0)
+        again = self.write("again.toml", done.out)
+        self.assertEqual(halflsb("predict", again, "--resolved").out, done.out)
+        done = halflsb("predict", plan, "--resolved", "--json")
+        self.assert_status(done, 64)
+        self.assertIn("the plan is TOML, and --json wants a JSON document", done.err + done.out)
+
     def test_an_unknown_option_names_the_nearest(self):
         done = halflsb("check", "plan.toml", "--rigg", "rig.toml")
         self.assert_status(done, 64)

@@ -301,6 +301,6 @@ TEST_CASE("each: long lists are not repeated without end", "[config]") {
     std::string keys;
     for (int i = 0; i < 100; ++i) keys += std::to_string(i) + ",";
     CHECK(plan_problems(signal_and_filter.substr(0, signal_and_filter.find("[[case]]")) + text + keys + "]\n") ==
-          "plan.toml:16:1: the cases hold 6000500 values, the most are 5000000\n    [case.each]\n    ^\n"
+          "plan.toml:16:1: the cases hold 6001500 values, the most are 5000000\n    [case.each]\n    ^\n"
           "  keep long lists in a file beside the plan, or vary fewer values in [case.each]\n");
 }

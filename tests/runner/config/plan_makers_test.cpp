@@ -102,7 +102,7 @@ TEST_CASE("plan: the number of a column is the one in the file, the times counte
     const auto refused = [&](const std::string& number, const std::string& problem) {
         CHECK(plan_problems(column(number), files) ==
               "plan.toml:33:10: " + problem + "\n    column = \"" + number + "\"\n             ^\n  " +
-                  "Give column = one of: gross, net, or its number from 1, in quotes.\n");
+                  "give column = one of: gross, net, or its number from 1, in quotes\n");
     };
     refused("2", "column \"2\" of \"w.csv\" holds the times");
     refused("4", "\"w.csv\" has no column \"4\"");

@@ -90,7 +90,7 @@ TEST_CASE("report: a failing case shows figures, the first bad sample with neigh
 
 TEST_CASE("report: in 40 columns the tables give way, the command stays whole", "[report]") {
     CHECK(case_text(sample::run(), 1, plain(40)) ==
-          "2/5  mains hum, half…  fail       error\n"
+          "2/5  mains hu…f scale  fail       error\n"
           "  error: fail\n"
           "    against the declared reference,\n"
           "    asked at cw7.toml:20:3\n"
