@@ -119,7 +119,13 @@ int accept_command(const Options& options, const Desk& desk) {
         if (!before) return tell(before.error(), options, desk);
         if (!problems.empty()) return tell_problems(problems, desk);
         const auto accepted = accept_baseline(*record, *plan, target.matches, *before, wish, desk.files);
-        if (!accepted) return tell(accepted.error(), options, desk);
+        if (!accepted) {
+            Error error = accepted.error();
+            // The advice of a run's folder, --out, is no option here.
+            if (error.kind == ErrorKind::output)
+                error.remedy = "free some space, or give this user the right to write there";
+            return tell(error, options, desk);
+        }
         if (desk.answer != nullptr) desk.answer->add_baseline(*accepted);
         if (auto written = say(desk, accepted_text(*accepted, style)); !written)
             return tell(written.error(), options, desk);

@@ -89,7 +89,7 @@ int judge_command(const Options& options, const Desk& desk) {
         desk.answer->add_run(std::move(*document));
     }
     const int status = exit_status_of_judgement(run);
-    if (!written && status == 0) return tell(written.error(), options, desk);
+    if (!written) return tell(written.error(), options, desk);
     return status;
 }
 

@@ -125,6 +125,7 @@ Outcome<std::string> judged_run_json(const RecordedRun& record, const RunResult&
         if (key == "verdict" || key == "cases") continue;
         head[key] = value;
     }
+    head["content_sha256"] = unsealed_sha256;
     if (another_plan) head["plan"] = plan_json(judged);
     head["ended_by"] = error_json(judged.ended_by);
     head["warnings"] = judged.warnings;

@@ -3,6 +3,7 @@
 #include <limits>
 #include <set>
 
+#include "runner/record/run_document.hpp"
 #include "runner/record/run_folder.hpp"
 #include "runner/record/strict_json.hpp"
 #include "runner/world/printable.hpp"
@@ -253,6 +254,10 @@ Outcome<RecordedRun> read_recorded_run(const Files& files, const std::string& gi
     }
     read_document(top, record);
     if (!problem.empty()) return refused(place, problem, "it was edited or damaged; capture anew with halflsb check");
+    if (!is_sealed(*text)) {
+        return refused(place, "it was edited: its bytes have another SHA-256 than its content_sha256 says",
+                       "take the record as check wrote it, or capture anew with halflsb check");
+    }
     record.document = std::move(*text);
     return record;
 }

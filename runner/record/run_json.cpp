@@ -187,6 +187,7 @@ std::string GrowingRunJson::document(const RunResult& run, bool finished) {
         {"format_version", run_json_version},
         {"tool_version", run.tool_version},
         {"finished", finished},
+        {"content_sha256", finished ? Json(unsealed_sha256) : Json(nullptr)},
         {"started_utc", text_json(run.started_utc)},
         {"elapsed_s", number_json(run.elapsed_s)},
         {"plan", plan_json(run)},

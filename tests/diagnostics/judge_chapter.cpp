@@ -3,6 +3,7 @@
 #include <string>
 #include <vector>
 
+#include "runner/record/run_document.hpp"
 #include "tests/diagnostics/workshop.hpp"
 
 namespace halflsb::diagnostics {
@@ -83,7 +84,9 @@ void show_edited_records(Page& page, const Workshop& workshop) {
         if (at == std::string::npos) {
             page.missing(done);
         } else {
-            workshop.write("edited/" + file, text.replace(at, from.size(), to));
+            text.replace(at, from.size(), to);
+            // Sealed anew, so that what the edit broke is told and not the edit.
+            workshop.write("edited/" + file, file == "run.json" ? sealed(text) : text);
             page.show(done, workshop.said_by({"judge", "edited"}));
         }
         fs::remove_all("edited");
@@ -133,7 +136,7 @@ void show_accept(Page& page, const Workshop& workshop) {
     document = spoilt(document, "\"ended_by\": null",
                       "\"ended_by\": { \"kind\": \"bench\", \"place\": null, \"problem\": \"the port is gone\", "
                       "\"remedy\": null }");
-    workshop.write("edited/run.json", document);
+    workshop.write("edited/run.json", sealed(document));
     page.show("a run that was ended after its last case", workshop.said_by({"accept", "edited"}));
 
     fs::remove_all("edited");

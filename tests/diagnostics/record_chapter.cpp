@@ -5,6 +5,7 @@
 
 #include "runner/record/capture_file.hpp"
 #include "runner/record/recorded_run.hpp"
+#include "runner/record/run_document.hpp"
 #include "runner/record/run_json.hpp"
 #include "runner/record/strict_json.hpp"
 #include "runner/world/sha256.hpp"
@@ -85,7 +86,8 @@ void show_documents(Page& page) {
         files = good;
         auto json = nlohmann::ordered_json::parse(good.contents.at(place));
         edit(json);
-        files.contents[place] = json.dump();
+        // Sealed anew, so that what the edit broke is told and not the edit.
+        files.contents[place] = sealed(json.dump());
         page.show(done, read_recorded_run(files, "run"));
     };
     using Document = nlohmann::ordered_json;
@@ -99,6 +101,10 @@ void show_documents(Page& page) {
         d["cases"][1]["name"] = d["cases"][0]["name"];
         d["verdict"]["cases"][1]["name"] = d["cases"][0]["name"];
     });
+    files = good;
+    std::string& document = files.contents[place];
+    document.replace(document.find("\"verdict\": \"fail\""), 17, "\"verdict\": \"pass\"");
+    page.show("a verdict edited by hand", read_recorded_run(files, "run"));
     edited("no case planned", [](Document& d) { d["cases_planned"] = nlohmann::ordered_json::array(); });
     edited("more cases than were planned", [](Document& d) { d["cases_planned"] = {"tare step"}; });
     std::string deep;

@@ -181,6 +181,15 @@ class Accept(Case):
         self.assertEqual({path.name: path.read_bytes() for path in baseline.iterdir()}, before)
         self.captured("again", status=0)
 
+    def test_a_disk_without_room_is_told_without_options_that_accept_does_not_have(self):
+        self.captured(status=2)
+        # A file may have 1 KiB, the samples of a case need more.
+        limited = ("bash", "-c", "trap '' XFSZ; ulimit -f 1; exec \"$@\"", "bash")
+        done = halflsb("accept", self.folder / "run", cwd=self.folder, prefix=limited)
+        self.assert_status(done, 73)
+        self.assertIn("free some space, or give this user the right to write there", done.err)
+        self.assertFalse((self.folder / "baseline" / "baseline.toml").exists())
+
     def test_a_folder_that_cannot_be_written(self):
         self.captured(status=2)
         (self.folder / "baseline").write_text("a file in the way")

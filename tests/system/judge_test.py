@@ -22,7 +22,7 @@ def bytes_below(folder):
 
 
 def with_planned(text, names):
-    return json.dumps({**json.loads(text), "cases_planned": names})
+    return support.sealed(json.dumps({**json.loads(text), "cases_planned": names}))
 
 
 class Judge(Case):
@@ -51,7 +51,7 @@ class Judge(Case):
         path = self.folder / file
         record = json.loads(path.read_text())
         change(record)
-        path.write_text(json.dumps(record))
+        path.write_text(support.sealed(json.dumps(record)))
 
     def test_by_the_same_plan_the_verdict_is_the_same_byte_for_byte(self):
         for faults, status in (((), 0), (("A01",), 1)):
@@ -67,6 +67,17 @@ class Judge(Case):
                 self.assertEqual(verdict_of(document.out), verdict_of(written))
                 self.assertEqual(json.loads(document.out)["runs"], [json.loads(written)])
                 support.shutil.rmtree(self.folder / "run")
+
+    def test_a_record_that_was_edited_by_hand_is_refused(self):
+        self.captured(faults=("A01",), status=1)
+        path = self.folder / "run" / "run.json"
+        whole = path.read_text()
+        self.assertEqual(support.sealed(whole), whole)
+        for old, new in (('"verdict": "fail"', '"verdict": "pass"'), ('"build_id": "', '"build_id": "0'), ("\n  ", "\n   ")):
+            path.write_text(whole.replace(old, new, 1))
+            self.refused("run.json: it was edited: its bytes have another SHA-256 than its content_sha256 says")
+        path.write_text(whole)
+        self.assert_status(self.judge(), 1)
 
     def test_the_folder_is_enough_when_plan_and_rig_are_gone_or_changed(self):
         taps = self.folder / "taps.txt"

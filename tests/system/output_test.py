@@ -1,5 +1,6 @@
 """Results that cannot be written: exit 73, before the board is touched where that can be known, and nothing finished lost."""
 import os
+import shutil
 import subprocess
 
 from support import NOISE, STEP, Case, halflsb, main
@@ -61,6 +62,15 @@ exit $status
             done = subprocess.run([support.HALFLSB, "check", self.plan(STEP), "--rig", self.rig(), "--out", self.folder / "run"],
                                   stdout=full, stderr=subprocess.PIPE, timeout=support.LIMIT_S)
         self.assertEqual(done.returncode, 73, done.stderr)
+
+    def test_a_failure_that_nobody_could_read_says_so_on_standard_error(self):
+        for words in ((), ("--json",)):
+            with self.virtual_board("--fault", "A01"), open("/dev/full", "w") as full:
+                done = subprocess.run([support.HALFLSB, "check", self.plan(NOISE), "--rig", self.rig(), "--out", self.folder / "run", *words],
+                                      stdout=full, stderr=subprocess.PIPE, timeout=support.LIMIT_S)
+            self.assertEqual(done.returncode, 73, done.stderr)
+            self.assertIn(b"standard output", done.stderr)
+            shutil.rmtree(self.folder / "run")
 
     def test_closed_standard_output_is_not_a_pass_and_nothing_else_takes_its_place(self):
         with self.virtual_board():
