@@ -77,9 +77,8 @@ std::string case_line(const RunResult& run, std::size_t index, const TextStyle& 
     for (const std::string& name : run.cases_planned) longest = std::max(longest, columns_of(printable(name)));
     const auto width = static_cast<std::size_t>(std::max(style.width, 40));
     const std::size_t beside_name = columns_of(place) + 2 + 2 + verdict_columns;
-    // Names get what is left of half the line, so that the figures have the other half.
-    const std::size_t name_columns =
-        std::min(longest, std::max<std::size_t>(16, width / 2 + 4 - std::min(width / 2, beside_name)));
+    // Names come first: cases of one [case.each] differ only in them. Figures that find no room have the next line.
+    const std::size_t name_columns = std::min(longest, width - std::min(width - 16, beside_name));
 
     std::string line = place + "  " + padded(cut_to(style, printable(result.name), name_columns), name_columns) + "  ";
     const std::string brief = case_brief(result);

@@ -90,7 +90,8 @@ TEST_CASE("report: a failing case shows figures, the first bad sample with neigh
 
 TEST_CASE("report: in 40 columns the tables give way, the command stays whole", "[report]") {
     CHECK(case_text(sample::run(), 1, plain(40)) ==
-          "2/5  mains hu…f scale  fail       error\n"
+          "2/5  mains hum, half scale  fail\n"
+          "     error\n"
           "  error: fail\n"
           "    against the declared reference,\n"
           "    asked at cw7.toml:20:3\n"
@@ -112,7 +113,7 @@ TEST_CASE("report: in 40 columns the tables give way, the command stays whole", 
           "  latency: pass, 0 samples\n"
           "  rerun: halflsb check cw7.toml --rig bench.toml --case 'mains hum, half scale'\n");
     CHECK(case_text(sample::run(), 0, plain(40)) ==
-          "1/5  tare step         pass\n"
+          "1/5  tare step              pass\n"
           "     max 0.499 LSB of 0.5, latency 0\n"
           "     samples\n");
 }
