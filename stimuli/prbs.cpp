@@ -7,7 +7,8 @@
 //
 // The period is 2^order - 1 samples. Stage k is bit k - 1 of the register. A ONE is the level, a ZERO its
 // negative. The register begins with ones in all stages, as section 5.1 has it for order 9; the
-// Recommendation leaves the others free.
+// Recommendation leaves the others free. (All of this as texts that quote the Recommendation have it; the document
+// itself was not at hand.)
 #include <array>
 
 #include "stimuli/shape.hpp"
