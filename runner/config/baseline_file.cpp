@@ -10,9 +10,6 @@ namespace halflsb {
 
 namespace {
 
-constexpr std::string_view damaged_remedy =
-    "take the baseline as it was committed, or remove its folder and accept a good run anew";
-
 bool is_sha256(std::string_view text) {
     return text.size() == 64 && text.find_first_not_of("0123456789abcdef") == std::string_view::npos;
 }

@@ -8,6 +8,7 @@
 #include <memory>
 #include <optional>
 #include <string>
+#include <string_view>
 #include <vector>
 
 #include "oracle/judge/plan.hpp"
@@ -15,6 +16,10 @@
 #include "runner/world/baseline.hpp"
 
 namespace halflsb {
+
+/// What to do about a baseline that is not as `accept` wrote it.
+inline constexpr std::string_view damaged_remedy =
+    "take the baseline as it was committed, or remove its folder and accept a good run anew";
 
 /// baseline.toml as it stands in the file.
 struct Baseline {

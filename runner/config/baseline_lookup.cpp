@@ -12,8 +12,6 @@ namespace halflsb {
 
 namespace {
 
-constexpr std::string_view damaged_remedy =
-    "take the baseline as it was committed, or remove its folder and accept a good run anew";
 constexpr std::string_view accept_remedy = "accept a good run with halflsb accept RUN";
 
 std::string shown_folder(const std::string& path) { return path.ends_with('/') ? path : path + "/"; }
