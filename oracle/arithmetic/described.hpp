@@ -13,9 +13,12 @@
 
 namespace halflsb {
 
+/// Of a word that nobody limited: as wide as it takes.
+inline constexpr int wide_bits = 128;
+
 /// Two's complement: the number X stands for X 2^-fraction_bits, a value of the chain's input.
 struct Word {
-    int bits = 64;
+    int bits = wide_bits;
     int fraction_bits = 0;  ///< may be negative: output_per_input below 1
     Overflow overflow = Overflow::wrap;
     bool operator==(const Word&) const = default;
@@ -44,7 +47,7 @@ struct DescribedStage {
     // Of integer stages:
     int coefficient_fraction_bits = 0;
     FeedbackCoefficients feedback_coefficients = FeedbackCoefficients::added;
-    int accumulator_bits = 64;
+    int accumulator_bits = wide_bits;
     Overflow accumulator_overflow = Overflow::wrap;
     /// None: as many as the terms of each sum have, or as rounding_at says.
     std::optional<int> accumulator_fraction_bits;
@@ -56,10 +59,10 @@ struct DescribedStage {
     bool fused = false;
 
     Rounding rounding = Rounding::floor, output_rounding = Rounding::floor;
-    /// The plan said so: rounding, and for every stage but the last its words. Twins need it; limits that do not know
-    /// the rounding take any from floor to half-up.
+    /// The plan said so. Twins need all three; limits that do not know the rounding take any from floor to half-up.
     bool rounding_is_said = false;
-    bool words_are_said = true;
+    bool words_are_said = true;         ///< of every stage but the last
+    bool coefficients_are_said = true;  ///< how finely they are stored
 };
 
 /// Fraction bits of the accumulator of a sum whose terms have at most `terms` and which goes to words with `target`.
@@ -82,9 +85,9 @@ struct DescribedChain {
 };
 
 /// `chain` is that of one channel. Refuses contradictory arithmetic, coefficients outside their word, an accumulator
-/// that cannot hold one product, registers of a CIC that are too narrow, words of a kind of filter that has none of
-/// them where the stage itself said them (`said` in its StageArithmetic is not known here: the reader asks
-/// misplaced_word()). A chain without stages is described as one that passes its input on.
+/// that cannot hold one product. Words that a kind of filter has no use for are ignored: they may stand in
+/// [arithmetic] for another stage; of a stage's own words the reader asks misplaced_word(). A chain without stages is
+/// described as a fir of the one tap 1.
 struct DescribedOrProblem {
     std::optional<DescribedChain> described;
     std::optional<ArithmeticProblem> problem;

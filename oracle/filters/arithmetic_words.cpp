@@ -95,7 +95,7 @@ const Recipe& arithmetic_recipe() {
             one_of_words(
                 "feedback_coefficients", {"added", "subtracted"},
                 "Whether the stored a1, a2 have their sign turned round and are added (when left out), or not."),
-            bits("accumulator_bits", 8.0, 64.0, "Width of the sum of products; 64 when left out."),
+            bits("accumulator_bits", 8.0, 64.0, "Width of the sum of products; as wide as it takes when left out."),
             bits("accumulator_fraction_bits", 0.0, 126.0,
                  "Fraction bits of that sum; as many as the products have when left out, or as rounding_at says."),
             one_of_words("accumulator_overflow", {"wrap", "saturate"},

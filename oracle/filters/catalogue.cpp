@@ -46,7 +46,11 @@ Outcome<std::optional<int>> fraction_bits_of(const FilterKind& kind, const Param
         return refuse(fraction_bits_name, "a firmware that shifts stores no coefficient, and shift_bits is given",
                       "leave " + std::string(fraction_bits_name) + " out, or give coefficient instead of shift_bits");
     }
-    if (kind.complaint == nullptr || is_shift) return std::optional<int>();
+    if (kind.complaint == nullptr || is_shift) {
+        // A moving average stores one number, its reciprocal.
+        return is_shift || arithmetic.division != Division::reciprocal ? std::nullopt
+                                                                       : arithmetic.coefficient_fraction_bits;
+    }
     if (!values.has(fraction_bits_name)) return arithmetic.coefficient_fraction_bits;
     const auto bits = values.integer(kind.recipe, fraction_bits_name);
     if (!bits || *bits < 0 || *bits > static_cast<std::int64_t>(most_fraction_bits)) {
@@ -81,7 +85,7 @@ Outcome<std::vector<int>> channels_of(const ParameterValues& values, int channel
 
 // A complaint that comes with rounding is about the word length, and has a remedy: more bits.
 Outcome<FilterStage> checked_after_rounding(FilterStage stage, Complaint complaint) {
-    if (!stage.coefficient_fraction_bits) return stage;
+    if (!stage.coefficient_fraction_bits || complaint == nullptr) return stage;
     const auto problem = complaint(with_rounded_coefficients(stage));
     if (!problem) return stage;
     // Finer is not always better by one step (a pole can round inwards, then outwards), so the advice is
