@@ -77,6 +77,7 @@ void SumPoints::add_sum(std::vector<Term> terms, const SumTarget& target) {
 void SumPoints::add_products(const std::vector<Term>& terms, const SumTarget& target, int accumulator,
                              bool of_feedback) {
     SumTarget products = target;
+    products.rounding = stage_.rounding;  // whatever the rounding of the sum is
     products.what += of_feedback ? ", products of feedback" : ", products";
     products.fraction_bits = accumulator;
     RoundingPoint point = point_at(products);
@@ -85,11 +86,11 @@ void SumPoints::add_products(const std::vector<Term>& terms, const SumTarget& ta
     point.from_input = of_feedback ? target.from_input : target.from_input_of_terms;
     const bool any = stage_.rounding_at == RoundingAt::product && !is_known();
     for (const Term& t : terms) {
-        if (t.is_feedback != of_feedback) continue;
+        if (t.is_feedback != of_feedback || (!any && !stage_.coefficients_are_said)) continue;
         const RoundedNumbers numbers =
             any ? RoundedNumbers{unlimited, -unlimited, unlimited} : numbers_of({t}, t.fraction_bits, accumulator);
         if (numbers.parts <= 1.0) continue;
-        const RoundingError error = rounding_error(rounding_of(target), numbers).times(point.step);
+        const RoundingError error = rounding_error(rounding_of(products), numbers).times(point.step);
         ++point.count;
         point.error = point.error + error;
         point.parts = std::max(point.parts, numbers.parts);
