@@ -14,9 +14,10 @@ constexpr std::string_view channels_name = "channels";
 constexpr double most_channels = 255.0;  // the greeting counts them in a byte
 
 std::vector<FilterKind> written_kinds() {
-    std::vector<FilterKind> kinds{
-        moving_average_kind(), fir_kind(), biquad_cascade_kind(), one_pole_kind(), dc_blocker_kind(),
-        notch_kind(),          comb_kind()};
+    std::vector<FilterKind> kinds{moving_average_kind(), fir_kind(),       biquad_cascade_kind(), one_pole_kind(),
+                                  dc_blocker_kind(),     notch_kind(),     comb_kind(),           windowed_sinc_kind(),
+                                  butterworth_kind(),    chebyshev_kind(), equaliser_kind(),      weighting_kind(),
+                                  octave_band_kind()};
     for (FilterKind& kind : kinds) {
         if (kind.complaint != nullptr) kind.recipe.parameters.push_back(fraction_bits_parameter());
         kind.recipe.parameters.push_back(

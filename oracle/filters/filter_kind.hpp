@@ -24,7 +24,8 @@ struct FilterKind {
     Complaint complaint = nullptr;  ///< asked again after rounding; none: the kind has no coefficients
 };
 
-// The kinds, in finite_kinds.cpp, section_kinds.cpp, corner_kinds.cpp and comb_kind.cpp.
+// The kinds, in finite_kinds.cpp, section_kinds.cpp, corner_kinds.cpp and comb_kind.cpp; those that compute a design in
+// windowed_sinc_kind.cpp, recursive_kinds.cpp, equaliser_kind.cpp and acoustic_kinds.cpp.
 FilterKind moving_average_kind();
 FilterKind fir_kind();
 FilterKind biquad_cascade_kind();
@@ -32,6 +33,12 @@ FilterKind one_pole_kind();
 FilterKind dc_blocker_kind();
 FilterKind notch_kind();
 FilterKind comb_kind();
+FilterKind windowed_sinc_kind();
+FilterKind butterworth_kind();
+FilterKind chebyshev_kind();
+FilterKind equaliser_kind();
+FilterKind weighting_kind();
+FilterKind octave_band_kind();
 
 Error refuse(std::string_view place, std::string problem, std::string remedy);
 /// The shortest text that reads back as the same number.
