@@ -27,7 +27,13 @@ std::vector<FilterKind> written_kinds() {
                                   cic_decimator_kind(),
                                   cic_interpolator_kind(),
                                   fir_decimator_kind(),
-                                  fir_interpolator_kind()};
+                                  fir_interpolator_kind(),
+                                  windowed_sinc_kind(),
+                                  butterworth_kind(),
+                                  chebyshev_kind(),
+                                  equaliser_kind(),
+                                  weighting_kind(),
+                                  octave_band_kind()};
     for (FilterKind& kind : kinds) {
         if (kind.complaint != nullptr) kind.recipe.parameters.push_back(fraction_bits_parameter());
         kind.recipe.parameters.push_back(
