@@ -4,6 +4,7 @@
 #include <cmath>
 
 #include "oracle/arithmetic/declared.hpp"
+#include "runner/config/coefficient_files.hpp"
 #include "runner/config/plan_words.hpp"
 
 namespace halflsb {
@@ -112,10 +113,13 @@ private:
             read_.is_unknown = true;
             return;
         }
+        std::optional<CoefficientFiles> files;
+        if (reader.is_clean()) files.emplace(context_, reader, *recipe, stage.values);
         ArithmeticTable own = read_arithmetic(context_, reader, "[filter.arithmetic]", common_->arithmetic);
         reader.refuse_unknown_keys();
         if (!reader.is_clean()) return;
         stage.arithmetic = own.arithmetic;
+        if (files && !files->settle(stage.arithmetic, signal_, stage_count == 1)) return;
         stage.depends_on_rate = is_in_time(*recipe, stage.values);
         if (signal_ == nullptr && stage.depends_on_rate) return;
         auto made = make_stage(recipe->name, stage.values,
