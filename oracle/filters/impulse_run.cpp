@@ -30,8 +30,7 @@ double sum_of_sizes(std::span<const double> piece) {
     return sum;
 }
 
-ImpulseRun::ImpulseRun(const FilterChain& chain, std::size_t phase) : source_(phase + 1, 0.0) {
-    source_.back() = 1.0;
+ImpulseRun::ImpulseRun(const FilterChain& chain) : source_{1.0} {
     const auto add = [this](const FilterDesign& design, const Memory& memory) {
         parts_.push_back({make_filter({FilterStage{design, std::nullopt}}), memory, PastSum(memory.samples),
                           PastSum(memory.samples)});
@@ -52,6 +51,17 @@ ImpulseRun::ImpulseRun(const FilterChain& chain, std::size_t phase) : source_(ph
         }
     }
     source_rest_ = sum_of_sizes(source_);
+}
+
+void ImpulseRun::restart(std::size_t phase) {
+    source_.assign(phase + 1, 0.0);
+    source_.back() = 1.0;
+    source_rest_ = 1.0;
+    source_at_ = 0;
+    for (Part& part : parts_) {
+        part.filter->reset();
+        part.past_in = part.past_out = PastSum(part.memory.samples);
+    }
 }
 
 std::span<const double> ImpulseRun::next() {

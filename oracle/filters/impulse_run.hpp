@@ -25,8 +25,10 @@ class ImpulseRun {
 public:
     static constexpr std::size_t piece_samples = 1024;
 
-    /// A linear chain. `phase`: input index of the unit sample, not 0 only where the rate changes.
-    explicit ImpulseRun(const FilterChain& chain, std::size_t phase = 0);
+    /// A linear chain; the unit sample stands at input 0.
+    explicit ImpulseRun(const FilterChain& chain);
+    /// From rest, the unit sample at input `phase`. For a chain that changes the rate.
+    void restart(std::size_t phase);
     /// What the next piece_samples inputs give; good until the next call.
     std::span<const double> next();
     /// At least the sum of |h| after the pieces taken. Infinite where the states are too large to say.

@@ -29,8 +29,9 @@ double l1_of_changing_rate(const FilterChain& chain, double tail) {
     if (cycle.inputs > longest_cycle || cycle.outputs > most_samples)
         return chain.size() > 1 ? product_of_norms(chain, tail) : no_limit;
     std::vector<double> sums(static_cast<std::size_t>(cycle.outputs), 0.0);
+    ImpulseRun run(chain);
     for (std::int64_t input = 0; input < cycle.inputs; ++input) {
-        ImpulseRun run(chain, static_cast<std::size_t>(input));
+        run.restart(static_cast<std::size_t>(input));
         std::size_t phase = 0;
         double sum = 0.0;
         for (std::int64_t done = 0;; done += static_cast<std::int64_t>(ImpulseRun::piece_samples)) {
@@ -51,8 +52,9 @@ std::optional<std::int64_t> flush_of_changing_rate(const FilterChain& chain, dou
     if (cycle.inputs > longest_cycle || cycle.outputs > most_samples) return std::nullopt;
     std::vector<double> largest;  // weight of an input that is `index` samples older than the newest one
     double rest = 0.0;
+    ImpulseRun run(chain);
     for (std::int64_t input = 0; input < cycle.inputs; ++input) {
-        ImpulseRun run(chain, static_cast<std::size_t>(input));
+        run.restart(static_cast<std::size_t>(input));
         std::int64_t done = 0, output = 0;
         do {
             if (done > input + 2 * most_samples) return std::nullopt;

@@ -91,7 +91,8 @@ std::optional<std::int64_t> flush_around_median(const SplitAtMedian& split, doub
     FilterChain whole = split.before;
     whole.insert(whole.end(), split.behind.begin(), split.behind.end());
     const std::int64_t cycle = rate_cycle(whole).inputs;
-    return (zeros + cycle - 1) / cycle * cycle;
+    const std::int64_t whole_cycles = (zeros + cycle - 1) / cycle * cycle;
+    return whole_cycles <= most_samples ? std::optional(whole_cycles) : std::nullopt;
 }
 
 }  // namespace

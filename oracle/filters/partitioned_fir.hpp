@@ -9,7 +9,8 @@
 // Accuracy: |error| <= some 20 x 2^-53 sqrt(sum taps^2) x sqrt(sum x^2) over the window, of which the direct form has
 // N 2^-53 sum |taps x|; far below 1e-12 of the largest output, but a silent stretch near a loud one is not exactly
 // silent. A NaN is gone one stretch later than in direct form. Cost: B multiply-adds, two transforms of 2 B for B
-// samples, and 4 multiply-adds for each part: with 65,536 taps a twentieth of the direct form.
+// samples, and 4 multiply-adds for each part. Measured against the direct form (tests/bench, one shared core): half as
+// fast at 256 taps, 1.4 times at 512, 3.6 at 1024, 10 at 4096, 34 at 65,536.
 #pragma once
 
 #include <complex>
@@ -53,7 +54,7 @@ private:
     std::size_t filled_ = 0;        ///< of the present stretch
 };
 
-/// From so many taps on make_filter takes this form. Measured (tests/bench): with fewer the direct form is as fast.
+/// From so many taps on make_filter takes this form. Below, little is won, and the direct form rounds less.
 inline constexpr std::size_t least_partitioned_taps = 1024;
 
 }  // namespace halflsb

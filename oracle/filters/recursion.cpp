@@ -109,7 +109,7 @@ double recursion_loss(const Recursion& design) {
 double carried_recursion_loss(const Recursion& design) {
     const double terms = static_cast<double>(design.b.size() + design.a.size() - 1);
     const double norm = l1_norm({FilterStage{design, std::nullopt}});
-    return 0x1p-53 * norm + terms * 0x1p-102 * loss_a_unit(design, norm);
+    return 0x1p-53 * norm + 2.0 * terms * (terms + 2.0) * 0x1p-106 * loss_a_unit(design, norm);
 }
 
 }  // namespace halflsb

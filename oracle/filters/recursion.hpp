@@ -53,7 +53,9 @@ private:
 /// unit circle to tell. It is a bound: what is seen is some 10 to 1000 times less.
 double recursion_loss(const Recursion& design);
 
-/// The same of RecursionFilter: 2^-53 sum |h| for the rounding of the output, and the above with 2^-102.
+/// The same of RecursionFilter: 2^-53 sum |h| for the rounding of the output, and for what is fed back the above with
+/// 2 (terms + 2) 2^-106 in place of 2^-53: the errors of n sums and products, together at most (n + 1) 2^-53 of all
+/// sizes, are themselves added up with 2 n roundings.
 double carried_recursion_loss(const Recursion& design);
 
 }  // namespace halflsb

@@ -48,37 +48,35 @@ int main(int count, char** arguments) {
     if (file == nullptr || std::fread(x.data(), sizeof(double), length, file) != length) return 66;
     std::fclose(file);
 
-    const auto time_filter = [&](const std::string& name, const FilterDesign& design) {
-        const auto filter = make_filter({FilterStage{design, std::nullopt}});
+    const auto time_of = [&](const std::string& name, Filter& filter, std::size_t some) {
         const double seconds = seconds_of([&] {
-            filter->reset();
-            for_blocks(length, [&](std::size_t first, std::size_t n) {
-                filter->process(std::span(x).subspan(first, n), std::span(y).subspan(first, n));
+            filter.reset();
+            for_blocks(some, [&](std::size_t first, std::size_t n) {
+                filter.process(std::span(x).subspan(first, n), std::span(y).subspan(first, n));
             });
         });
-        std::printf("%s %.9f\n", name.c_str(), seconds);
+        std::printf("%s %.9f\n", name.c_str(), seconds * static_cast<double>(length) / static_cast<double>(some));
+    };
+    const auto time_filter = [&](const std::string& name, const FilterDesign& design) {
+        time_of(name, *make_filter({FilterStage{design, std::nullopt}}), length);
     };
     for (const int points : {16, 1000}) time_filter("moving-average-" + std::to_string(points), MovingAverage{points});
     for (const std::size_t taps : {16u, 64u, 256u}) {
         time_filter("fir-" + std::to_string(taps), Fir{std::vector<double>(taps, 1.0 / static_cast<double>(taps))});
     }
     // Both forms of the same FIR: where the one becomes faster is where make_filter should change over.
-    for (const std::size_t taps : {512u, 1024u, 2048u, 4096u, 16384u, 65536u}) {
+    for (const std::size_t taps : {256u, 512u, 1024u, 2048u, 4096u, 16384u, 65536u}) {
         const Fir design{std::vector<double>(taps, 1.0 / static_cast<double>(taps))};
         FirFilter direct(design);
         PartitionedFirFilter partitioned(design);
-        const std::size_t few = std::min<std::size_t>(length, 200000);
-        for (const auto& [name, filter] :
-             {std::pair<const char*, Filter*>{"direct-fir-", &direct}, {"partitioned-fir-", &partitioned}}) {
-            const double seconds = seconds_of([&] {
-                filter->reset();
-                for_blocks(few, [&](std::size_t first, std::size_t n) {
-                    filter->process(std::span(x).subspan(first, n), std::span(y).subspan(first, n));
-                });
-            });
-            std::printf("%s%zu %.9f\n", name, taps, seconds * static_cast<double>(length) / static_cast<double>(few));
-        }
+        time_of("direct-fir-" + std::to_string(taps), direct, std::min<std::size_t>(length, 100000));
+        time_of("partitioned-fir-" + std::to_string(taps), partitioned, length);
     }
+    time_filter("recursion-2", Recursion{{0.0675, 0.1349, 0.0675}, {1.0, -1.143, 0.4128}});
+    time_filter("recursion-8",
+                Recursion{std::vector<double>(9, 0.1), {1.0, -0.5, 0.3, -0.2, 0.1, 0.05, 0.0, 0.02, 0.01}});
+    time_filter("median-9", Median{9});
+    time_filter("median-501", Median{501});
     const BiquadSection section{0.0675, 0.1349, 0.0675, -1.143, 0.4128};
     time_filter("biquads-1", BiquadCascade{{section}});
     time_filter("biquads-4", BiquadCascade{{section, section, section, section}});

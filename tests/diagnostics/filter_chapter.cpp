@@ -11,8 +11,15 @@ namespace halflsb::diagnostics {
 namespace {
 
 struct Body {
-    std::string_view done, filter;
+    std::string_view done;
+    std::string filter;
 };
+
+std::string ones(int count) {
+    std::string list = "1.0";
+    for (int i = 1; i < count; ++i) list += ", 1.0";
+    return list;
+}
 
 const std::vector<Body> bodies = {
     {"no points", "kind = \"moving-average\"\n"},
@@ -51,6 +58,28 @@ const std::vector<Body> bodies = {
     {"a comb that is unstable", "kind = \"comb\"\ndelay_samples = 8\nfeedback = -1.0\n"},
     {"a comb that passes nothing", "kind = \"comb\"\ndelay_samples = 8\ndirect = 0.0\nfeedback = 0.5\n"},
     {"a comb that delays nothing", "kind = \"comb\"\ndelay_samples = 8\n"},
+    {"a recursion of too high an order", "kind = \"iir\"\na = [1.0]\nb = [" + ones(34) + "]\n"},
+    {"a recursion without its output", "kind = \"iir\"\nb = [1.0]\na = [0.0, 0.5]\n"},
+    {"a recursion that passes nothing", "kind = \"iir\"\nb = [0.0, 0.0]\na = [1.0, 0.5]\n"},
+    {"a recursion that is unstable", "kind = \"iir\"\nb = [1.0]\na = [1.0, -2.1, 1.1]\n"},
+    {"a recursion with the signs of another book", "kind = \"iir\"\nb = [1.0]\na = [1.0, 1.5, -0.7]\n"},
+    {"a recursion that is unstable, not normalised", "kind = \"iir\"\nb = [1.0]\na = [0.5, 0.5]\n"},
+    {"a recursion whose a[0] is next to nothing", "kind = \"iir\"\nb = [1.0]\na = [1e-12, 1e-13]\n"},
+    {"a recursion that rounds to an unstable one",
+     "kind = \"iir\"\nb = [0.01]\na = [1.0, -1.9, 0.998]\ncoefficient_fraction_bits = 7\n"},
+    {"a CIC with too large a gain", "kind = \"cic-decimator\"\norder = 8\nfactor = 256\n"},
+    {"a CIC that changes no rate", "kind = \"cic-interpolator\"\norder = 3\nfactor = 1\n"},
+    {"an interpolator whose taps are no multiple",
+     "kind = \"fir-interpolator\"\ntaps = [0.5, 0.5, 0.5]\nfactor = 2\n"},
+    {"an interpolator whose taps lack more than one",
+     "kind = \"fir-interpolator\"\ntaps = [0.5, 0.5]\nfactor = 4\n"},
+    {"a decimator with the words of a CIC", "kind = \"fir-decimator\"\norder = 4\nfactor = 4\n"},
+    {"a filter that changes the rate", "kind = \"cic-decimator\"\norder = 4\nfactor = 25\n"},
+    {"a median of too many points", "kind = \"median\"\npoints = 5000\n"},
+    {"a start that is none", "kind = \"median\"\npoints = 5\ninitial = \"ones\"\n"},
+    {"a median that grows", "kind = \"median\"\npoints = 5\ninitial = \"growing\"\n"},
+    {"a CIC that begins with its first sample",
+     "kind = \"cic-decimator\"\norder = 4\nfactor = 25\ninitial = \"first-sample\"\n"},
     {"taps that all round to 0, at any number of bits",
      "kind = \"fir\"\ntaps = [1e-30]\ncoefficient_fraction_bits = 15\n"},
     {"a channel where there is one", "kind = \"fir\"\ntaps = [1.0]\nchannels = [2]\n"},
@@ -85,6 +114,8 @@ void show_words(Page& page) {
     made("half a bit", "fir", {{"taps", Reals{1.0}}, {"coefficient_fraction_bits", 1.5}});
     made("too many bits", "fir", {{"taps", Reals{1.0}}, {"coefficient_fraction_bits", std::int64_t{63}}});
     made("no channel", "fir", {{"taps", Reals{1.0}}, {"channels", Reals{}}});
+    made("no output coefficients", "iir", {{"b", Reals{1.0}}});
+    made("a start that is none", "fir", {{"taps", Reals{1.0}}, {"initial", std::string("ones")}});
     made("a stage of an unknown filter", "unknown", {});
     ParameterValues arithmetic;
     arithmetic.set("accumulator_bits", std::int64_t{65});

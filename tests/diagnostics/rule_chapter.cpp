@@ -94,6 +94,10 @@ void rule_chapter(Page& page) {
     parts.of_case = "rate_hz = 600.0\n";
     show_plan(page, "a band of all cases above Nyquist of one", parts.text());
     parts = {};
+    parts.filter = "kind = \"median\"\npoints = 5\n";
+    parts.rule = "kind = \"response\"\nbands = [{ from_hz = 10, to_hz = 500, max_db = 3 }]\n";
+    show_plan(page, "a response of a median", parts.text());
+    parts = {};
     parts.signal = "rate_hz = 1200.0\ninput = \"f32\"\noutput = \"f32\"\n";
     show_plan(page, "a limit in steps of a float format", parts.text());
     parts = {};

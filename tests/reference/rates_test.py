@@ -3,6 +3,7 @@
 upfirdn puts zeros in, filters and drops; a CIC runs as integrators and combs in Python's integers of any length; a
 median sorts its windows; a start with the first sample is lfilter's own initial state.
 """
+import os
 import subprocess
 import sys
 import time
@@ -156,6 +157,19 @@ def by_initial_state(kind, numbers, samples):
     return signal.lfilter(b, a, samples, zi=signal.lfilter_zi(b, a) * samples[0])[0]
 
 
+def same_bits_without_fma(program, rng):
+    """Long FIRs run through transforms, whose factors come from the C library: parts are so short that it has the same
+    bits for them with fused multiply-add and without."""
+    count, message = 20000, []
+    for taps in (1024, 3000, 65536):
+        message += [[1], [1, taps], rng.uniform(-1, 1, taps), [0], [count], rng.uniform(-1, 1, count), [2.0**-16]]
+    sent = np.concatenate([np.asarray(part, dtype=float) for part in message]).tobytes()
+    masked = {**os.environ, "GLIBC_TUNABLES": "glibc.cpu.hwcaps=-FMA,-AVX2,-FMA_Usable,-AVX2_Usable,-FMA4"}
+    outs = [subprocess.run([program], input=sent, capture_output=True, check=True, env=env).stdout for env in (None, masked)]
+    assert len(outs[0]) == 3 * 8 * (count + 3), "an answer of another length"
+    return outs[0] == outs[1]
+
+
 def main():
     program = sys.argv[1]
     seed = int(sys.argv[2]) if len(sys.argv) > 2 else time.time_ns() % 2**32
@@ -219,6 +233,9 @@ def main():
         if number % 5 == 0 and cycle[0] * cycle[1] < 400:
             expected_norm = norm_of(stages, *cycle)
             check(number, "L1 norm", abs(norm - expected_norm), 1e-11 * expected_norm)
+    if not same_bits_without_fma(program, rng):
+        failures += 1
+        print("FAILED: a long FIR has other bits without fused multiply-add")
     if at != len(answer):
         failures += 1
         print(f"FAILED: {len(answer) - at} numbers too many in the answer")
