@@ -1,8 +1,10 @@
 #include "oracle/filters/c_array.hpp"
 
 #include <algorithm>
+#include <cmath>
 
 #include "oracle/filters/c_declarations.hpp"
+#include "stimuli/number_text.hpp"
 
 namespace halflsb {
 
@@ -28,6 +30,7 @@ public:
             type_.kind = CType::Kind::integer;
             type_.bits = type_.least_bits = *wish.word_bits;
         }
+        holds_signed_bits_ = wish.word_bits && type_.kind == CType::Kind::integer && !type_.is_signed;
     }
 
     ReadTable read() {
@@ -179,7 +182,18 @@ private:
         auto stored = stored_in(type_, value, written_between(first, cursor));
         if (auto* complaint = std::get_if<CComplaint>(&stored))
             return refuse(first.token().at, std::move(complaint->problem), complaint->remedy);
-        return add(std::get<double>(stored), first.token().at);
+        double number = std::get<double>(stored);
+        if (type_.kind == CType::Kind::integer && !type_.is_signed && number >= std::ldexp(1.0, type_.bits - 1)) {
+            if (!holds_signed_bits_ && value.is_bits) {
+                return refuse(first.token().at,
+                              quoted_from_file(written_between(first, cursor)) + " in " + type_.name + " is " +
+                                  number_text(number) + ", but it looks like the bits of a negative number",
+                              "write file_word_bits = " + std::to_string(type_.bits) +
+                                  " in the plan if it is negative, or the number as decimal if it is not");
+            }
+            if (holds_signed_bits_) number -= std::ldexp(1.0, type_.bits);
+        }
+        return add(number, first.token().at);
     }
 
     bool add(double number, std::size_t at) {
@@ -242,6 +256,7 @@ private:
     CoefficientTable table_;
     std::size_t row_begin_ = 0, row_count_ = 0, end_ = 0;
     bool has_rows_ = false;
+    bool holds_signed_bits_ = false;  ///< the plan says that unsigned words hold the bits of signed ones
     std::optional<FileProblem> problem_;
 };
 
@@ -284,8 +299,10 @@ ReadTable read_c_array(std::string_view text, const CArrayWish& wish) {
                            "name the file that holds the numbers: a header may only declare the array");
         }
         if (arrays > 1) {
+            const auto is_array = [](const CDeclaration& d) { return d.is_array; };
+            const std::string first(std::find_if(all.begin(), all.end(), is_array)->name.text.substr(0, 60));
             return about_plan("", "the file holds " + std::to_string(arrays) + " arrays: " + names_of(all),
-                              "choose one: file_array = " + std::string("\"...\""));
+                              "choose one, for example file_array = \"" + first + "\"");
         }
     }
     const CDeclaration* chosen = nullptr;

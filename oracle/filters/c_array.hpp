@@ -18,7 +18,9 @@ namespace halflsb {
 
 struct CArrayWish {
     std::string name = {};              ///< "": the only one of the file
-    std::optional<int> word_bits = {};  ///< of integers whose type does not say it, 8 .. 64
+    /// Of integers whose type does not say it, 8 .. 64; of an unsigned type of that width: it holds the bits of signed
+    /// words.
+    std::optional<int> word_bits = {};
     /// The size of the array is not looked at where this file does not define it: the caller knows the count.
     bool count_is_known = false;
 };

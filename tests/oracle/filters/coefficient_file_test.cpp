@@ -264,7 +264,7 @@ TEST_CASE("coefficient file: padding is checked and left out, the rest is counte
     FileWords two = sections();
     two.count = 2;
     CHECK(refusal("t.txt", "1 0 0 0 0\n", two)
-              .starts_with("plan file_count: file_count = 2, and the file holds 1 sections"));
+              .starts_with("plan file_count: file_count = 2, and the file holds 1 section / "));
     two.padding_after = 5;
     two.count = 1;
     CHECK(coefficients_of("t.txt", "1 0 0 -0.5 0\n0 0 0 0 0\n", two).numbers == Numbers{1, 0, 0, -0.5, 0});
@@ -396,16 +396,17 @@ TEST_CASE("coefficient file: beside its design it is seen what is reversed, nega
     CHECK(told(words, "8\n4\n2\n", {0.5, 0.25, 0.125}) == "the same");
     // One LSB is 0.0625: a design that far away was rounded in another direction, and no more.
     CHECK(told(words, "8\n4\n2\n", {0.5, 0.3125, 0.125}) == "the same");
-    CHECK(told(words, "8\n4\n2\n", {0.5, 0.3126, 0.125}) ==
-          "at 4\n2\n: tap 1 is 0.25, in the design 0.3126; they may differ by 0.0625 / correct the one that is wrong");
+    CHECK(
+        told(words, "8\n4\n2\n", {0.5, 0.3126, 0.125}) ==
+        "at 4\n2\n: taps[1] is 0.25, in the design 0.3126; they may differ by 0.0625 / correct the one that is wrong");
     CHECK(told(words, "8\n4\n0\n", {0, 0.25, 0.5}) ==
           "plan file_order: taps_file: the taps are those of file_design in reverse / write file_order = "
           "\"oldest-first\"");
     CHECK(told(words, "8\n4\n", {0.5, 0.25, 0.125}) ==
-          "plan file_design: file_design has 3, the file 2 / compare a file with its own design");
+          "plan file_design: file_design has 3 taps, the file 2 taps / compare a file with its own design");
     words.fraction_bits = 14;
     CHECK(told(words, "16384\n8192\n", {0.5, 0.25}) ==
-          "plan file_fraction_bits: taps_file: the coefficients are 2 times those of file_design / write "
+          "plan file_fraction_bits: the coefficients are 2 times those of file_design / write "
           "file_fraction_bits = 15");
     FileWords two = sections();
     CHECK(told(two, "1 0 0 0.5 -0.25\n", {1, 0, 0, -0.5, 0.25}) ==
