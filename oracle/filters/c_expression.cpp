@@ -236,6 +236,10 @@ CExpression::Read CExpression::macro(CCursor& cursor, int depth) {
     const CMacro& only = found->second.front();
     if (only.is_function || only.is_undefined)
         return refused(name, shown + " is no number of this file", "write the number");
+    if (only.is_default) {
+        return refused(name, shown + " is defined unless the compiler's options define it",
+                       "write the number, or #define it without #ifndef around it");
+    }
     CCursor body{&only.body, 0};
     Read value = signed_value(body, depth + 1);
     if (auto* problem = std::get_if<FileProblem>(&value)) {

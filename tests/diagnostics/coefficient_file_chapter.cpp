@@ -26,6 +26,7 @@ const std::vector<Source> c_sources = {
     {"a call of a macro", "int16_t h[] = {Q15(0.5)};\n"},
     {"a name of another file", "int16_t h[] = {B0};\n"},
     {"a name that is defined twice", "#define B0 1\n#define B0 2\nint16_t h[] = {B0};\n"},
+    {"a name with a default", "#ifndef B0\n#define B0 5\n#endif\nint16_t h[] = {B0};\n"},
     {"a name of a macro with arguments", "#define B0(x) x\nint16_t h[] = {B0};\n"},
     {"a name for two numbers", "#define B 1, 2\nint16_t h[] = {B};\n"},
     {"a name for a call", "#define B Q(1)\nint16_t h[] = {B};\n"},

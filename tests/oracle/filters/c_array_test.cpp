@@ -236,6 +236,11 @@ TEST_CASE("c array: what only a compiler could tell is refused at its place", "[
               .starts_with("at A};: \"B\" stands for no number: \"Q\""));
     CHECK(refusal("#define B(x) x\nint16_t h[] = {B};") ==
           "at B};: \"B\" is no number of this file / write the number");
+    CHECK(
+        refusal("#ifndef B0\n#define B0 5\n#endif\nint16_t h[] = {B0};") ==
+        "at B0};: \"B0\" is defined unless the compiler's options define it / write the number, or #define it without "
+        "#ifndef around it");
+    CHECK(numbers_of("#ifndef H\n#define H\n#define B0 5\nint16_t h[] = {B0};\n#endif\n") == Numbers{5});
     CHECK(refusal("#define A A\nint16_t h[] = {A};").find("this expression is too deep") != std::string::npos);
     CHECK(
         refusal("int16_t h[] = {\n#include \"taps.inc\"\n};") ==
