@@ -17,13 +17,15 @@
 namespace halflsb {
 
 struct CArrayWish {
-    std::string name = {};              ///< "": the only one of the file
-    std::optional<int> word_bits = {};  ///< of integers whose type does not say it, 8 .. 64
+    std::string name = {};  ///< "": the only one of the file
+    /// Of integers whose type does not say it, 8 .. 64; of an unsigned type of that width: it holds the bits of signed
+    /// words.
+    std::optional<int> word_bits = {};
     /// The size of the array is not looked at where this file does not define it: the caller knows the count.
     bool count_is_known = false;
 };
 
-/// O(length of the text), some 20 MB a second; bounded as coefficient_table.hpp and c_tokens.hpp say.
+/// O(length of the text), some 5 MB a second; bounded as coefficient_table.hpp and c_tokens.hpp say.
 ReadTable read_c_array(std::string_view text, const CArrayWish& wish);
 
 }  // namespace halflsb

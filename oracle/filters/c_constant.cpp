@@ -126,14 +126,19 @@ Whole as_signed(std::uint64_t bits, int word_bits) {
 bool fits_word(std::uint64_t bits, int word_bits) { return word_bits >= 64 || bits >> word_bits == 0; }
 
 std::string range_of(const CType& type) {
-    if (!type.is_signed) return "from 0 to 2^" + std::to_string(type.bits) + " - 1";
-    const std::string top = "2^" + std::to_string(type.bits - 1);
-    return "from -" + top + " to " + top + " - 1";
+    const int bits = type.is_signed ? type.bits - 1 : type.bits;
+    std::string top = "2^" + std::to_string(bits) + " - 1",
+                bottom = type.is_signed ? "-2^" + std::to_string(bits) : "0";
+    if (bits <= 32) {
+        top = std::to_string((std::int64_t{1} << bits) - 1);
+        if (type.is_signed) bottom = "-" + std::to_string(std::int64_t{1} << bits);
+    }
+    return "from " + bottom + " to " + top;
 }
 
 std::variant<double, CComplaint> stored_in_word(const CType& type, const CValue& value, std::string_view written) {
     const std::string what = quoted_from_file(written);
-    const CComplaint beyond{what + " does not fit " + type.name, "its values go " + range_of(type)};
+    const CComplaint beyond{what + " does not fit " + type.name, "give a number " + range_of(type)};
     if (value.is_real) {
         if (value.real != std::trunc(value.real) || std::fabs(value.real) > 0x1p53) {
             return CComplaint{what + " in an array of " + type.name + " loses its fraction",

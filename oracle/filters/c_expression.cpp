@@ -12,6 +12,7 @@ constexpr int deepest = 32;
 /// Steps of one expression, the macros in it included.
 constexpr int most_work = 1000;
 constexpr std::int64_t largest_int = 0x7fffffff;
+constexpr std::string_view no_number = " stands for no number: ";
 constexpr std::string_view write_number = "write the number that the firmware is to have";
 
 FileProblem refused(const CToken& token, std::string problem, std::string_view remedy) {
@@ -99,6 +100,7 @@ std::string_view written_between(const CCursor& first, const CCursor& end) {
 
 CExpression::Read CExpression::read(CCursor& cursor) {
     work_ = 0;
+    used_at_ = cursor.token().at;
     return sum(cursor, 1, 0);
 }
 
@@ -223,7 +225,7 @@ CExpression::Read CExpression::macro(CCursor& cursor, int depth) {
         return inner;
     }
     const auto found = source_.macros.find(name.text);
-    if (found == source_.macros.end() || found->second.front().at > name.at) {
+    if (found == source_.macros.end() || found->second.front().at > used_at_) {
         return refused(name, shown + " is not known in this file",
                        "write the number, or #define it as a number before the array");
     }
@@ -234,12 +236,18 @@ CExpression::Read CExpression::macro(CCursor& cursor, int depth) {
     const CMacro& only = found->second.front();
     if (only.is_function || only.is_undefined)
         return refused(name, shown + " is no number of this file", "write the number");
+    if (only.is_default) {
+        return refused(name, shown + " is defined unless the compiler's options define it",
+                       "write the number, or #define it without #ifndef around it");
+    }
     CCursor body{&only.body, 0};
     Read value = signed_value(body, depth + 1);
     if (auto* problem = std::get_if<FileProblem>(&value)) {
         // Told where it is used: a reader of the array looks there.
         problem->byte = name.at;
-        problem->problem = shown + " stands for no number: " + problem->problem;
+        // Of names that stand for names the last one is the culprit.
+        if (problem->problem.find(no_number) == std::string::npos)
+            problem->problem = shown + std::string(no_number) + problem->problem;
         return value;
     }
     if (body.token().kind != CToken::Kind::end)

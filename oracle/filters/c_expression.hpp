@@ -42,6 +42,7 @@ private:
 
     const CSource& source_;
     int work_ = 0;
+    std::size_t used_at_ = 0;  ///< what is defined later than here has no meaning yet
 };
 
 }  // namespace halflsb

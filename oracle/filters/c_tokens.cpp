@@ -1,5 +1,6 @@
 #include "oracle/filters/c_tokens.hpp"
 
+#include <algorithm>
 #include <optional>
 
 namespace halflsb {
@@ -46,6 +47,7 @@ private:
         bool is_decided = false;  ///< #if 0, #if 1
         bool was_taken = false;   ///< of a decided one: a half before this one is compiled
         bool is_dead = false;
+        std::string_view unless_defined = {};  ///< the name behind #ifndef
     };
 
     void refuse(std::size_t at, std::string problem, std::string_view remedy) {
@@ -210,7 +212,7 @@ private:
     }
 
     void open_condition(std::size_t begin, std::string_view word) {
-        Condition condition{begin, false, false, false};
+        Condition condition{begin, false, false, false, {}};
         if (word == "if" && !is_dead()) {
             const std::vector<CToken> tokens = rest_of_line();
             const bool is_one_word = tokens.size() == 2;
@@ -219,6 +221,10 @@ private:
                 condition.was_taken = tokens[0].is("1");
                 condition.is_dead = !condition.was_taken;
             }
+        }
+        if (word == "ifndef") {
+            skip_space(true);
+            condition.unless_defined = take_name();
         }
         if (!condition.is_decided) add_directive(begin);
         if (conditions_.size() == most_conditions)
@@ -248,6 +254,8 @@ private:
         if (name.empty()) return;
         macro.is_function = at_ < text_.size() && text_[at_] == '(';
         macro.body = rest_of_line();
+        macro.is_default = std::any_of(conditions_.begin(), conditions_.end(),
+                                       [&](const Condition& condition) { return condition.unless_defined == name; });
         source_.macros[name].push_back(std::move(macro));
     }
 

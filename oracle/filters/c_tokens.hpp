@@ -35,6 +35,7 @@ struct CMacro {
     std::vector<CToken> body;   ///< ends with Kind::end
     bool is_function = false;   ///< takes arguments
     bool is_undefined = false;  ///< #undef
+    bool is_default = false;    ///< within #ifndef of the same name: an option of the compiler may have another
 };
 
 struct CSource {

@@ -117,6 +117,11 @@ double factor_between(const std::vector<double>& one, const std::vector<double>&
 
 }  // namespace
 
+std::string counted(CoefficientSet set, std::size_t numbers) {
+    const std::size_t count = set == CoefficientSet::taps ? numbers : numbers / 5;
+    return text_of(count) + (set == CoefficientSet::taps ? " tap" : " section") + (count == 1 ? "" : "s");
+}
+
 std::optional<FileProblem> doubt_about_taps(const FileCoefficients& file, const FileWords& words) {
     if (words.order || file.numbers.size() < 3) return std::nullopt;
     const auto last = static_cast<double>(file.numbers.size() - 1);
@@ -171,10 +176,9 @@ std::optional<FileProblem> differs_from_design(const FileCoefficients& file, con
                                                const std::vector<double>& design) {
     const std::string word(file_design_word);
     if (design.size() != file.numbers.size()) {
-        const std::size_t group = file.set == CoefficientSet::taps ? 1 : 5;
         return in_plan(
             word,
-            word + " has " + text_of(design.size() / group) + ", the file " + text_of(file.numbers.size() / group),
+            word + " has " + counted(file.set, design.size()) + ", the file " + counted(file.set, file.numbers.size()),
             "compare a file with its own design");
     }
     double largest = 0.0;
@@ -207,20 +211,19 @@ std::optional<FileProblem> differs_from_design(const FileCoefficients& file, con
         }
     }
     if (const double factor = factor_between(file.numbers, design, tolerance); factor != 0.0) {
-        return in_plan(words.fraction_bits ? "file_fraction_bits"
-                       : words.scale       ? "file_scale"
-                                           : words.key,
-                       words.key + ": the coefficients are " + number_text(factor) + " times those of " + word,
-                       words.fraction_bits
-                           ? "write file_fraction_bits = " +
-                                 std::to_string(*words.fraction_bits + static_cast<int>(std::log2(factor)))
-                           : "correct the scale");
+        const std::string problem = "the coefficients are " + number_text(factor) + " times those of " + word;
+        if (words.fraction_bits) {
+            const int bits = *words.fraction_bits + static_cast<int>(std::log2(factor));
+            return in_plan("file_fraction_bits", problem, "write file_fraction_bits = " + std::to_string(bits));
+        }
+        const double scale = words.scale.value_or(1.0) / factor;
+        return in_plan(words.scale ? "file_scale" : words.key, problem, "write file_scale = " + number_text(scale));
     }
     std::size_t at = 0;
     while (std::fabs(file.numbers[at] - design[at]) <= tolerance) ++at;
     const std::array<const char*, 5> names = {"b0", "b1", "b2", "a1", "a2"};
     const std::string which = file.set == CoefficientSet::taps
-                                  ? "tap " + text_of(at)
+                                  ? "taps[" + text_of(at) + "]"
                                   : std::string(names[at % 5]) + " of section " + text_of(at / 5 + 1);
     return FileProblem{file.places[at],
                        {},

@@ -8,6 +8,9 @@
 
 namespace halflsb {
 
+/// "3 taps", "1 section", of so many canonical numbers.
+std::string counted(CoefficientSet set, std::size_t numbers);
+
 /// Taps that carry their energy late and are not symmetric, where the plan does not say their order. A filter may be so
 /// (a delay), so one word settles it; but signal libraries store taps oldest first, and then this is how they look:
 /// the centre of sum h[k]^2 lies behind the middle by more than a tenth of the length and half a tap.

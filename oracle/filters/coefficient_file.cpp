@@ -31,8 +31,6 @@ double largest_of(const std::vector<double>& numbers) {
     return largest;
 }
 
-std::string_view noun(CoefficientSet set) { return set == CoefficientSet::taps ? "taps" : "sections"; }
-
 class Interpreter {
 public:
     Interpreter(const CoefficientTable& table, const FileWords& words, std::optional<int> stored_bits)
@@ -207,8 +205,8 @@ private:
         if (words_.count && static_cast<std::size_t>(*words_.count) != count) {
             return refuse(
                 in_plan("file_count",
-                        "file_count = " + std::to_string(*words_.count) + ", and the file holds " + text_of(count) +
-                            " " + std::string(noun(words_.set)),
+                        "file_count = " + std::to_string(*words_.count) + ", and the file holds " +
+                            counted(words_.set, made_.numbers.size()),
                         "correct the one that is wrong; zeros that are none of them are file_padding_before or "
                         "file_padding_after"));
         }

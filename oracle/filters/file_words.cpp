@@ -36,7 +36,8 @@ std::vector<Parameter> common_words() {
          .unit = "bits",
          .minimum = 8.0,
          .maximum = 64.0,
-         .help = "Width of the signed integers of a C array whose type does not say it: a struct, an int."},
+         .help = "Width of the signed integers of a C array whose type does not say it: a struct, an int, an unsigned "
+                 "type that holds the bits of signed words."},
         {.name = "file_padding_before",
          .type = ParameterType::integer,
          .unit = "numbers",

@@ -69,8 +69,7 @@ public:
         if (!problem_) look_for_decimal_commas();
         if (!problem_ && !column_.empty()) take_column();
         if (problem_) return *std::move(problem_);
-        // One number a line is one long list.
-        table_.row_numbers = columns_ <= 1 || is_continued_ ? 0 : columns_;
+        table_.row_numbers = is_one_list() ? 0 : columns_;
         return std::move(table_);
     }
 
@@ -84,7 +83,6 @@ private:
         const std::string_view whole = text_.substr(begin, end - begin);
         const std::string_view line = trimmed(whole.substr(0, whole.find('#')), at);
         if (line.empty()) return;
-        ++lines_;
         if (separator_ == '\0') {
             separator_ = line.find(';') != std::string_view::npos    ? ';'
                          : line.find('\t') != std::string_view::npos ? '\t'
@@ -174,6 +172,14 @@ private:
             refuse(first_half_ - 1, "these look like numbers with a decimal comma", point);
     }
 
+    /// One number a line, or lines that go on in the next one. Where the last line ends in a separator, too, and none
+    /// is shorter, it may be a table as well, and is taken for one.
+    bool is_one_list() const {
+        if (columns_ <= 1) return true;
+        const bool has_lines = table_.numbers.size() > columns_;
+        return is_continued_ && has_lines && table_.column_names.empty() && (is_ragged_ || !was_open_);
+    }
+
     void take_column() {
         const auto& names = table_.column_names;
         const auto found = std::find(names.begin(), names.end(), column_);
@@ -202,7 +208,7 @@ private:
     CoefficientTable table_;
     char separator_ = '\0';
     std::vector<Cell> cells_;
-    std::size_t columns_ = 0, lines_ = 0;
+    std::size_t columns_ = 0;
     std::size_t first_half_ = 0;  ///< a byte and 1; 0: none
     bool was_open_ = false, is_continued_ = false, is_ragged_ = false, all_whole_ = true;
 };

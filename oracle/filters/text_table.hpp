@@ -1,8 +1,9 @@
 // Numbers in a text file, as design programs and spreadsheets write them.
 //
 // One number a line; or several a line, between commas, semicolons, tabs or blanks (what the first line uses), the same
-// count on every line. A comma at the end of a line is forgiven, and where every line but the last ends in one the
-// numbers are one long list. A first line of words names the columns. Blank lines and what follows a # are skipped.
+// count on every line. A comma at the end of a line is forgiven; where every line but the last ends in one, or the
+// last is shorter, the numbers are one long list. A first line of words names the columns. Blank lines and what follows
+// a # are skipped.
 #pragma once
 
 #include <string_view>

@@ -140,7 +140,7 @@ bool CoefficientFiles::has_sensible_gain(const FileCoefficients& read, const Sig
                                     : words_->scale       ? std::string_view("file_scale")
                                                           : std::string_view(words_->key);
     const double through = gain * std::fabs(signal.output_per_input);
-    const std::string what = std::string(blamed) + ": the taps sum up to " + number_text(gain) + ", so ";
+    const std::string what = std::string(blamed) + ": the sizes of the taps sum up to " + number_text(gain) + ", so ";
     if (through * lsb_value(signal.input) >= full_scale_value(signal.output) / 4.0) {
         refuse(blamed, what + "1 LSB at the input could fill a quarter of the output",
                "say what the numbers in the file are worth: file_fraction_bits or file_scale");

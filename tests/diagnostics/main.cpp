@@ -17,6 +17,7 @@ int main() {
     signal_file_chapter(page);
     filter_chapter(page);
     design_chapter(page);
+    coefficient_file_chapter(page);
     rule_chapter(page);
     baseline_chapter(page);
     rig_chapter(page);

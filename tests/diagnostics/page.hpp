@@ -49,6 +49,7 @@ void stimulus_chapter(Page& page);
 void signal_file_chapter(Page& page);
 void filter_chapter(Page& page);
 void design_chapter(Page& page);
+void coefficient_file_chapter(Page& page);
 void rule_chapter(Page& page);
 void baseline_chapter(Page& page);
 void rig_chapter(Page& page);

@@ -56,7 +56,7 @@ void check_printed(FakeFiles files, const Plan& plan) {
 
 }  // namespace
 
-/// A plan, and behind a NUL byte each the files taps.txt and common.toml beside it.
+/// A plan, and behind a NUL byte each the files taps.txt (as taps.h, too) and common.toml beside it.
 extern "C" int LLVMFuzzerTestOneInput(const std::uint8_t* data, std::size_t size) {
     const std::string_view text(reinterpret_cast<const char*>(data), size);
     const std::size_t cut = std::min(text.find('\0'), size);
@@ -66,6 +66,7 @@ extern "C" int LLVMFuzzerTestOneInput(const std::uint8_t* data, std::size_t size
         const std::string_view rest = text.substr(cut + 1);
         const std::size_t second = std::min(rest.find('\0'), rest.size());
         files.contents["p/taps.txt"] = rest.substr(0, second);
+        files.contents["p/taps.h"] = rest.substr(0, second);
         if (second < rest.size()) files.contents["p/common.toml"] = rest.substr(second + 1);
     }
     if (may_take_long(text)) return 0;
@@ -74,7 +75,7 @@ extern "C" int LLVMFuzzerTestOneInput(const std::uint8_t* data, std::size_t size
         fuzz::require(path.starts_with("p/"), "a plan reads nothing outside the root", path);
     }
     if (const auto* problems = std::get_if<ReadProblems>(&read)) {
-        fuzz::require_whole_messages(*problems, {"p/plan.toml", "p/taps.txt", "p/common.toml", "taps.txt"});
+        fuzz::require_whole_messages(*problems, {"p/plan.toml", "p/taps.txt", "p/taps.h", "p/common.toml", "taps.txt"});
     } else {
         check_usable(std::get<Plan>(read));
         check_printed(files, std::get<Plan>(read));

@@ -46,7 +46,11 @@ TEST_CASE("c array: integers in every base, with suffixes, signs, parentheses an
 
 TEST_CASE("c array: the type of the array decides what a bit pattern means", "[oracle]") {
     CHECK(numbers_of("int16_t h[] = {0xFFFF, 0x8000, 0x7FFF, 0177777};") == Numbers{-1, -32768, 32767, -1});
-    CHECK(numbers_of("uint16_t h[] = {0xFFFF, 0x8000};") == Numbers{65535, 32768});
+    CHECK(numbers_of("uint16_t h[] = {65535, 0x7FFF, 32768};") == Numbers{65535, 32767, 32768});
+    CHECK(refusal("uint16_t h[] = {0x8000};") ==
+          "at 0x8000: \"0x8000\" in uint16_t is 32768, but it looks like the bits of a negative number / write "
+          "file_word_bits = 16 in the plan if it is negative, or the number as decimal if it is not");
+    CHECK(numbers_of("uint16_t h[] = {0xFFFF, 32768, 32767};", {"", 16, false}) == Numbers{-1, -32768, 32767});
     CHECK(numbers_of("int32_t h[] = {0xFFFF, 0xFFFFFFFF, 0x80000000};") == Numbers{65535, -1, -2147483648.0});
     CHECK(numbers_of("int64_t h[] = {0xFFFFFFFF, 0xFFFFFFFFFFFFFFFF};") == Numbers{4294967295.0, -1});
     CHECK(numbers_of("q31_t h[] = {0xC0000000};") == Numbers{-1073741824.0});
@@ -71,7 +75,7 @@ TEST_CASE("c array: the type of the array decides what a bit pattern means", "[o
 }
 
 TEST_CASE("c array: what does not fit the word is refused on both sides of its ends", "[oracle]") {
-    const std::string signed_16 = " does not fit int16_t / its values go from -2^15 to 2^15 - 1";
+    const std::string signed_16 = " does not fit int16_t / give a number from -32768 to 32767";
     CHECK(refusal("int16_t h[] = {32767}; ") == "accepted");
     CHECK(refusal("int16_t h[] = {32768}; ") == "at 32768}: \"32768\"" + signed_16);
     CHECK(refusal("int16_t h[] = {-32769};") == "at -32769: \"-32769\"" + signed_16);
@@ -79,7 +83,7 @@ TEST_CASE("c array: what does not fit the word is refused on both sides of its e
     CHECK(refusal("int16_t h[] = {(int8_t)128};").find("does not fit int8_t") != std::string::npos);
     CHECK(refusal("uint16_t h[] = {65535};") == "accepted");
     CHECK(refusal("uint16_t h[] = {65536};") ==
-          "at 65536}: \"65536\" does not fit uint16_t / its values go from 0 to 2^16 - 1");
+          "at 65536}: \"65536\" does not fit uint16_t / give a number from 0 to 65535");
     CHECK(refusal("uint16_t h[] = {-1};").starts_with("at -1};: \"-1\" does not fit"));
     CHECK(
         refusal("int16_t h[] = {0.5};") ==
@@ -89,6 +93,8 @@ TEST_CASE("c array: what does not fit the word is refused on both sides of its e
     CHECK(refusal("int64_t h[] = {9007199254740993};") ==
           "at 900719: \"9007199254740993\" has more than the 53 bits that a reference in double can hold / give "
           "coefficients of at most 53 bits");
+    CHECK(refusal("int64_t h[] = {9223372036854775808};")
+              .find("does not fit int64_t / give a number from -2^63 to 2^63 - 1") != std::string::npos);
     CHECK(refusal("int64_t h[] = {18446744073709551616};") ==
           "at 184467: \"18446744073709551616\" is beyond 64 bits / a coefficient has at most 64 bits");
     CHECK(refusal("char h[] = {127};") == "accepted");
@@ -194,7 +200,7 @@ TEST_CASE("c array: several arrays are told apart by name", "[oracle]") {
     CHECK(numbers_of(two, {"low", {}, false}) == Numbers{1, 2});
     CHECK(numbers_of(two, {"high", {}, false}) == Numbers{-1});
     CHECK(numbers_of(two, {"one", {}, false}) == Numbers{5});
-    CHECK(refusal(two) == "plan : the file holds 2 arrays: low, high / choose one: file_array = \"...\"");
+    CHECK(refusal(two) == "plan : the file holds 2 arrays: low, high / choose one, for example file_array = \"low\"");
     CHECK(refusal(two, {"mid", {}, false}) ==
           "plan file_array: file_array = \"mid\": the file has no such array / its arrays are low, high");
     CHECK(refusal("extern const int16_t h[4];") ==
@@ -226,8 +232,15 @@ TEST_CASE("c array: what only a compiler could tell is refused at its place", "[
           "at B0};: \"B0\" stands for more than one number / put its text into parentheses, or write the number");
     CHECK(
         refusal("#define B0 Q(1)\nint16_t h[] = {B0};").starts_with("at B0};: \"B0\" stands for no number: \"Q\" is"));
+    CHECK(refusal("#define A B\n#define B Q(1)\nint16_t h[] = {A};")
+              .starts_with("at A};: \"B\" stands for no number: \"Q\""));
     CHECK(refusal("#define B(x) x\nint16_t h[] = {B};") ==
           "at B};: \"B\" is no number of this file / write the number");
+    CHECK(
+        refusal("#ifndef B0\n#define B0 5\n#endif\nint16_t h[] = {B0};") ==
+        "at B0};: \"B0\" is defined unless the compiler's options define it / write the number, or #define it without "
+        "#ifndef around it");
+    CHECK(numbers_of("#ifndef H\n#define H\n#define B0 5\nint16_t h[] = {B0};\n#endif\n") == Numbers{5});
     CHECK(refusal("#define A A\nint16_t h[] = {A};").find("this expression is too deep") != std::string::npos);
     CHECK(
         refusal("int16_t h[] = {\n#include \"taps.inc\"\n};") ==

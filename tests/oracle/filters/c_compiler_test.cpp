@@ -116,11 +116,13 @@ private:
 
     std::string integer(const Type& type) {
         const int width = std::min(type.bits, 52);
+        // In an unsigned word a bit pattern with the top bit set is asked about, not read.
+        const int pattern = type.is_signed ? width : width - 1;
         switch (below(9)) {
             case 0:  // the pattern of the word, which may be a negative number
-                return in_base(bits(width), below(2) == 0 ? "0x%llX" : "0x%llx");
+                return in_base(bits(pattern), below(2) == 0 ? "0x%llX" : "0x%llx");
             case 1:
-                return "0" + in_base(bits(width), "%llo");
+                return "0" + in_base(bits(pattern), "%llo");
             case 2:
                 return in_base(bits(width - (type.is_signed ? 1 : 0)), "%llu") + (below(2) == 0 ? "u" : "UL");
             case 3:

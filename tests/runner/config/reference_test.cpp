@@ -76,6 +76,7 @@ TEST_CASE("docs: every part of a plan that the page shows is good", "[config][do
     const std::vector<std::string> samples = samples_of(test::page_text("plan.md"));
     FakeFiles files;
     files.contents["./stimuli/belt.csv"] = "# rate_hz = 1200\ntime_s,raw\n0.000000,0.5\n0.000833,-1\n0.001667,2\n";
+    files.contents["./firmware/settle.h"] = test::page_text("../rigs/filters/coefficients/settle.h");
     for (const std::string& sample : samples) {
         if (const std::string path = named_file(sample); !path.empty()) files.contents["./" + path] = sample;
     }
