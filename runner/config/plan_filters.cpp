@@ -5,6 +5,7 @@
 #include <deque>
 
 #include "oracle/arithmetic/declared.hpp"
+#include "runner/config/coefficient_files.hpp"
 #include "runner/config/plan_arithmetic.hpp"
 #include "runner/config/plan_words.hpp"
 
@@ -77,11 +78,14 @@ private:
             read_.is_unknown = true;
             return;
         }
+        std::optional<CoefficientFiles> files;
+        if (reader.is_clean()) files.emplace(context_, reader, *recipe, stage.values);
         read_arithmetic(context_, reader, "[filter.arithmetic]", common_.arithmetic, tables.own);
         reader.refuse_unknown_keys();
         if (!reader.is_clean()) return;
         tables.values = stage.values;
         stage.arithmetic = tables.own.arithmetic;
+        if (files && !files->settle(stage.arithmetic, signal_, stage_count == 1)) return;
         stage.depends_on_rate = is_in_time(*recipe, stage.values);
         if (signal_ == nullptr && stage.depends_on_rate) return;
         auto made = make_stage(recipe->name, stage.values,
