@@ -119,6 +119,7 @@ private:
         second.saves_fraction = stage_.fraction_saving;
         second.rounding = stage_.output_rounding;
         second.from_input_of_terms = first.from_input;
+        second.multiplies_input = false;
         sums_.add_sum({term(s.b0, state), term(s.b1, state), term(s.b2, state)}, second);
     }
 
@@ -135,6 +136,7 @@ private:
         const Word difference{wide_bits, std::max(in_.fraction_bits, stage_.state.fraction_bits)};
         SumTarget target = at_section("product", 0, Place::loop);
         target.fraction_bits = stage_.state.fraction_bits;
+        target.multiplies_input = false;
         sums_.add_sum({term(s.b0, difference)}, target);
     }
 
@@ -144,6 +146,7 @@ private:
         sums_.add_product(term(s.b0, in_), target, 1.0);
         target.what = "product of state";
         target.from_input_of_terms = target.from_input;
+        target.multiplies_input = false;
         sums_.add_product(term(s.b0, stage_.state), target, -1.0);
     }
 

@@ -53,6 +53,7 @@ void SumPoints::add_product(const Term& product, const SumTarget& target, double
     point.variance_each = point.error.variance;
     point.from_input = target.from_input_of_terms;
     point.factor = std::fabs(product.coefficient);
+    point.is_of_input = target.multiplies_input;
     points.push_back(std::move(point));
 }
 
@@ -83,6 +84,7 @@ void SumPoints::add_products(const std::vector<Term>& terms, const SumTarget& ta
     RoundingPoint point = point_at(products);
     point.count = 0;
     point.factor = unlimited;
+    point.is_of_input = !of_feedback && target.multiplies_input;
     point.from_input = of_feedback ? target.from_input : target.from_input_of_terms;
     const bool any = stage_.rounding_at == RoundingAt::product && !is_known();
     for (const Term& t : terms) {

@@ -23,6 +23,7 @@ struct SumTarget {
     int fraction_bits = 0;
     Rounding rounding = Rounding::floor;
     bool saves_fraction = false;
+    bool multiplies_input = true;  ///< its forward products do; those of direct-2's output multiply the state
     FilterChain from_input = {};           ///< to the sum
     FilterChain from_input_of_terms = {};  ///< to what its forward products multiply
 };
