@@ -36,8 +36,11 @@ struct Recurrence {
     bool is_one_pole = false;  ///< the firmware stores b0 alone
 };
 
-// Integer stages. `name` is put before the names of the nodes, "stage 1, ".
-std::unique_ptr<StageTwin> make_fir_twin(const DescribedStage& stage, const std::string& name);
+// `name` is put before the names of the nodes, "stage 1, ". Of integer stages, but for the median:
+
+/// Computed for the first sample and each keeps_each-th after it.
+std::unique_ptr<StageTwin> make_fir_twin(const DescribedStage& stage, const std::vector<double>& taps,
+                                         std::size_t keeps_each, const std::string& name);
 std::unique_ptr<StageTwin> make_comb_twin(const DescribedStage& stage, const std::string& name);
 std::unique_ptr<StageTwin> make_moving_average_twin(const DescribedStage& stage, const std::string& name);
 std::unique_ptr<StageTwin> make_one_pole_twin(const DescribedStage& stage, const std::string& name);
@@ -49,8 +52,17 @@ std::unique_ptr<StageTwin> make_direct_2_twin(const DescribedStage& stage, const
 std::unique_ptr<StageTwin> make_transposed_2_twin(const DescribedStage& stage, const Recurrence& section,
                                                   const std::string& name);
 
-/// Any float32 stage; of a section `section` says what it computes.
-std::unique_ptr<StageTwin> make_float_twin(const DescribedStage& stage, const Recurrence* section,
-                                           const std::string& name);
+std::unique_ptr<StageTwin> make_cic_twin(const DescribedStage& stage, const std::string& name);
+/// In either kind of number.
+std::unique_ptr<StageTwin> make_median_twin(const DescribedStage& stage, const std::string& name);
+
+// Of float32 stages.
+std::unique_ptr<StageTwin> make_float_fir_twin(const DescribedStage& stage, const std::vector<double>& taps,
+                                               std::size_t keeps_each, const std::string& name);
+std::unique_ptr<StageTwin> make_float_comb_twin(const DescribedStage& stage, const std::string& name);
+std::unique_ptr<StageTwin> make_float_average_twin(const DescribedStage& stage, const std::string& name);
+/// Its coefficients as stored: multiples of 2^-f where the stage says f.
+std::unique_ptr<StageTwin> make_float_section_twin(const DescribedStage& stage, const Recurrence& section,
+                                                   const std::string& name);
 
 }  // namespace halflsb

@@ -1,8 +1,6 @@
 #include "oracle/arithmetic/twin.hpp"
 
-#include <array>
-
-#include "oracle/arithmetic/family.hpp"
+#include "oracle/arithmetic/kept_samples.hpp"
 #include "oracle/arithmetic/stage_twin.hpp"
 #include "oracle/filters/coefficients.hpp"
 
@@ -86,9 +84,13 @@ Recurrence recurrence_of(const BiquadSection& s, std::string_view kind) {
     return {{s.b0, s.b1, s.b2}, {s.a1, s.a2}, false};
 }
 
+Recurrence recurrence_of(const Recursion& recursion) {
+    return {recursion.b, {recursion.a.begin() + 1, recursion.a.end()}, false};
+}
+
 std::unique_ptr<StageTwin> make_section(const DescribedStage& stage, const Recurrence& section,
                                         const std::string& name) {
-    if (stage.number == NumberKind::float32) return make_float_twin(stage, &section, name);
+    if (stage.number == NumberKind::float32) return make_float_section_twin(stage, section, name);
     switch (stage.structure) {
         case Structure::direct_2:
             return make_direct_2_twin(stage, section, name);
@@ -104,37 +106,63 @@ std::unique_ptr<StageTwin> make_section(const DescribedStage& stage, const Recur
 
 using StageTwins = std::vector<std::unique_ptr<StageTwin>>;
 
-void append_cascade(const DescribedStage& described, const std::string& name, StageTwins& twins) {
-    const FilterStage coefficients =
-        described.number == NumberKind::float32 ? with_rounded_coefficients(described.stage) : described.stage;
-    const auto& sections = std::get<BiquadCascade>(coefficients.design).sections;
-    DescribedStage section = described;
-    for (std::size_t i = 0; i < sections.size(); ++i) {
-        section.out = described.out;
-        // Sections that only the last one shortens pass on what they keep.
-        const bool is_last = i + 1 == sections.size();
-        if (described.rounding_at == RoundingAt::output && !is_last) section.out.word = described.state;
-        if (described.number == NumberKind::float32 && !is_last) section.out = passed_float();
-        const std::string of = sections.size() == 1 ? name : name + "section " + std::to_string(i + 1) + ", ";
-        twins.push_back(make_section(section, recurrence_of(sections[i], described.stage.kind), of));
-        section.in = section.out;
-    }
-}
+/// The twins of one stage, by its design.
+class StageMaker {
+public:
+    StageMaker(const DescribedStage& stage, std::string name, StageTwins& twins)
+        : stage_(stage), is_float_(stage.number == NumberKind::float32), name_(std::move(name)), twins_(twins) {}
 
-void append_stage(const DescribedStage& stage, const std::string& name, StageTwins& twins) {
-    if (std::holds_alternative<BiquadCascade>(stage.stage.design)) {
-        append_cascade(stage, name, twins);
-    } else if (stage.number == NumberKind::float32) {
-        twins.push_back(make_float_twin(stage, nullptr, name));
-    } else if (std::holds_alternative<Fir>(stage.stage.design)) {
-        twins.push_back(make_fir_twin(stage, name));
-    } else if (std::holds_alternative<MovingAverage>(stage.stage.design)) {
-        twins.push_back(make_moving_average_twin(stage, name));
-    } else if (std::holds_alternative<Comb>(stage.stage.design)) {
-        twins.push_back(make_comb_twin(stage, name));
-    } else {
-        twins.push_back(nullptr);
+    void operator()(const MovingAverage&) { add(is_float_ ? make_float_average_twin : make_moving_average_twin); }
+    void operator()(const Comb&) { add(is_float_ ? make_float_comb_twin : make_comb_twin); }
+    void operator()(const Median&) { add(make_median_twin); }
+    void operator()(const CicDecimator&) { add_cic(); }
+    void operator()(const CicInterpolator&) { add_cic(); }
+    void operator()(const Fir& fir) { add_fir(fir.taps, 1); }
+    void operator()(const FirDecimator& fir) { add_fir(fir.taps, static_cast<std::size_t>(fir.factor)); }
+    void operator()(const FirInterpolator& fir) {
+        twins_.push_back(std::make_unique<ZeroStuffing>(static_cast<std::size_t>(fir.factor)));
+        add_fir(fir.taps, 1);
     }
+    void operator()(const Recursion& recursion) {
+        twins_.push_back(make_section(stage_, recurrence_of(recursion), name_));
+    }
+
+    void operator()(const BiquadCascade& cascade) {
+        const auto& sections = cascade.sections;
+        DescribedStage section = stage_;
+        for (std::size_t i = 0; i < sections.size(); ++i) {
+            const bool is_last = i + 1 == sections.size();
+            section.out = stage_.out;
+            // Sections that only the last one shortens pass on what they keep.
+            if (stage_.rounding_at == RoundingAt::output && !is_last) section.out.word = stage_.state;
+            if (is_float_ && !is_last) section.out = passed_float();
+            const std::string of = sections.size() == 1 ? name_ : name_ + "section " + std::to_string(i + 1) + ", ";
+            twins_.push_back(make_section(section, recurrence_of(sections[i], stage_.stage.kind), of));
+            section.in = section.out;
+        }
+    }
+
+private:
+    void add(std::unique_ptr<StageTwin> (*make)(const DescribedStage&, const std::string&)) {
+        twins_.push_back(make(stage_, name_));
+    }
+    void add_fir(const std::vector<double>& taps, std::size_t keeps_each) {
+        twins_.push_back((is_float_ ? make_float_fir_twin : make_fir_twin)(stage_, taps, keeps_each, name_));
+    }
+    // What integrators in float32 lose no comb brings back: there is no twin of that.
+    void add_cic() { twins_.push_back(is_float_ ? nullptr : make_cic_twin(stage_, name_)); }
+
+    const DescribedStage& stage_;
+    bool is_float_;
+    std::string name_;
+    StageTwins& twins_;
+};
+
+void append_stage(const DescribedStage& stage, std::string name, StageTwins& twins) {
+    // Of integer stages the coefficients are stored by those who multiply; floats are made of the rounded ones.
+    const FilterStage coefficients =
+        stage.number == NumberKind::float32 ? with_rounded_coefficients(stage.stage) : stage.stage;
+    std::visit(StageMaker(stage, std::move(name), twins), coefficients.design);
 }
 
 }  // namespace
@@ -143,6 +171,7 @@ std::unique_ptr<Twin> make_twin(const DescribedChain& chain) {
     if (chain.missing || chain.stages.empty()) return nullptr;
     StageTwins twins;
     for (std::size_t i = 0; i < chain.stages.size(); ++i) {
+        if (chain.stages[i].stage.initial != Initial::zeros) return nullptr;
         append_stage(chain.stages[i], "stage " + std::to_string(i + 1) + ", ", twins);
     }
     for (const auto& twin : twins) {

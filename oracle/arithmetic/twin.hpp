@@ -26,6 +26,7 @@ class Twin {
 public:
     virtual ~Twin() = default;
     virtual void reset() = 0;
+    /// How many outputs the next `inputs` samples will give.
     virtual std::size_t outputs_for(std::size_t inputs) const { return inputs; }
     /// Codes of the input format to codes of the output format; out.size() == outputs_for(in.size()).
     virtual void process(std::span<const Code> in, std::span<Code> out) = 0;
@@ -39,8 +40,9 @@ public:
     virtual std::vector<NodeReach> reaches() const = 0;
 };
 
-/// nullptr where the description is incomplete (`missing`), and where nobody limited a sum that can need more than 126
-/// bits (a wide accumulator of products of two words of 64).
+/// nullptr where the description is incomplete (`missing`), and of what no bits are defined for: a stage that does not
+/// start from zeros, a CIC in float32, a sum that nobody limited and that can need more than 126 bits (a wide
+/// accumulator of products of two words of 64), a CIC whose registers need more than 64.
 std::unique_ptr<Twin> make_twin(const DescribedChain& chain);
 
 }  // namespace halflsb

@@ -1,7 +1,6 @@
 // Stages that keep past inputs and past results: fir, comb, sections and iir in direct form I.
-#include <array>
-
 #include "oracle/arithmetic/history.hpp"
+#include "oracle/arithmetic/kept_samples.hpp"
 #include "oracle/arithmetic/stored_terms.hpp"
 
 namespace halflsb {
@@ -20,6 +19,7 @@ struct DirectPlan {
     bool has_state = false;                      ///< results go to state words first
     Word out;
     Rounding output_rounding = Rounding::floor;
+    std::size_t keeps_each = 1;  ///< of a decimator that has no state: its factor
 };
 
 template <class Sum>
@@ -32,7 +32,8 @@ public:
           to_output_{plan.out.fraction_bits - plan.sum.target.fraction_bits, plan.output_rounding, plan.out.overflow},
           output_(name + "output", plan.out),
           inputs_(deepest(plan.forward) + 1),
-          states_(deepest(plan.feedback)) {
+          states_(deepest(plan.feedback)),
+          kept_(plan.keeps_each) {
         for (const DelayedTerm& each : plan.forward) forward_.emplace_back(each, plan.sum);
         for (const DelayedTerm& each : plan.feedback) feedback_.emplace_back(each, plan.sum);
         for (const auto* taps : {&forward_, &feedback_}) {
@@ -48,7 +49,10 @@ public:
         output_.reset();
         inputs_.reset();
         states_.reset();
+        kept_.reset();
     }
+
+    std::size_t outputs_for(std::size_t inputs) const override { return kept_.count_of(inputs); }
 
     void process(std::span<const std::int64_t> in, std::span<std::int64_t> out) override {
         if (is_plain_) {
@@ -63,21 +67,29 @@ public:
         inputs_.for_each_newest_first(inputs_.depth() - 1, put);
         states_.for_each_newest_first(states_.depth(), put);
         if (sum_.saves_fraction()) put(sum_.rest());
+        if (kept_.has_state()) put(kept_.state());
     }
 
     bool take_state(std::span<const std::int64_t>& state) override {
         const std::size_t inputs = inputs_.depth() - 1, states = states_.depth();
-        if (state.size() < inputs + states + (sum_.saves_fraction() ? 1 : 0)) return false;
+        if (state.size() < inputs + states + (sum_.saves_fraction() ? 1 : 0) + (kept_.has_state() ? 1 : 0))
+            return false;
         inputs_.set(state.first(inputs));
         states_.set(state.subspan(inputs, states));
         for (const std::int64_t word : state.subspan(inputs, states)) {
             if (!state_.holds(word)) return false;
         }
         state = state.subspan(inputs + states);
-        if (!sum_.saves_fraction()) return true;
-        const std::int64_t rest = state.front();
-        state = state.subspan(1);
-        return sum_.set_rest(rest);
+        bool is_state = true;
+        if (sum_.saves_fraction()) {
+            is_state = sum_.set_rest(state.front());
+            state = state.subspan(1);
+        }
+        if (kept_.has_state()) {
+            is_state = kept_.set_state(state.front()) && is_state;
+            state = state.subspan(1);
+        }
+        return is_state;
     }
 
     void append_reaches(std::vector<NodeReach>& reaches) const override {
@@ -113,8 +125,10 @@ private:
              std::span<std::int64_t> out) {
         // Local, so that what is written to memory cannot be thought to change it.
         Accumulator<Sum> sum = sum_;
-        for (std::size_t i = 0; i < in.size(); ++i) {
-            inputs_.push(in[i]);
+        auto result = out.begin();
+        for (const std::int64_t x : in) {
+            inputs_.push(x);
+            if (!kept_.keeps()) continue;
             sum.start();
             const std::int64_t* const newest = inputs_.newest();
             for (const AnyTap& tap : forward) sum.add(tap.product(newest[-tap.delay]));
@@ -123,9 +137,9 @@ private:
                 for (const AnyTap& tap : feedback) sum.add(tap.product(next[-tap.delay]));
                 const Sum state = state_.hold(sum.shortened());
                 states_.push(static_cast<std::int64_t>(state));
-                out[i] = static_cast<std::int64_t>(output_.hold(to_output_(state)));
+                *result++ = static_cast<std::int64_t>(output_.hold(to_output_(state)));
             } else {
-                out[i] = static_cast<std::int64_t>(output_.hold(sum.shortened()));
+                *result++ = static_cast<std::int64_t>(output_.hold(sum.shortened()));
             }
         }
         sum_ = std::move(sum);
@@ -140,6 +154,7 @@ private:
     Shift to_output_;
     Register<Sum> output_;
     History<std::int64_t> inputs_, states_;
+    KeptSamples kept_;
 };
 
 std::unique_ptr<StageTwin> make(const DescribedStage& stage, DirectPlan plan, const std::string& name) {
@@ -160,12 +175,14 @@ std::unique_ptr<StageTwin> make(const DescribedStage& stage, DirectPlan plan, co
 
 }  // namespace
 
-std::unique_ptr<StageTwin> make_fir_twin(const DescribedStage& stage, const std::string& name) {
-    const auto& taps = std::get<Fir>(stage.stage.design).taps;
+std::unique_ptr<StageTwin> make_fir_twin(const DescribedStage& stage, const std::vector<double>& taps,
+                                         std::size_t keeps_each, const std::string& name) {
     DirectPlan plan;
-    for (std::size_t k = 0; k < taps.size(); ++k)
+    for (std::size_t k = 0; k < taps.size(); ++k) {
         plan.forward.push_back({forward_term(stage, taps[k], stage.in.word), k});
+    }
     if (stage.summation == Summation::oldest_first) std::reverse(plan.forward.begin(), plan.forward.end());
+    plan.keeps_each = keeps_each;
     return make(stage, std::move(plan), name);
 }
 

@@ -2,9 +2,9 @@
 //
 // The tree is built without contraction, so a * b + c is two operations. std::fmaf rounds once whether the processor
 // has a fused multiply-add or the C library computes it.
-#include "oracle/arithmetic/family.hpp"
 #include "oracle/arithmetic/float_ports.hpp"
 #include "oracle/arithmetic/history.hpp"
+#include "oracle/arithmetic/kept_samples.hpp"
 #include "oracle/arithmetic/stage_twin.hpp"
 #include "oracle/filters/coefficients.hpp"
 
@@ -25,20 +25,31 @@ struct FloatTap {
 /// What all have: the ends, and a fixed list of float32 that is their state.
 class FloatStage : public StageTwin {
 public:
-    FloatStage(const DescribedStage& stage, const std::string& name)
-        : input_(stage.in), output_(stage.out, stage.rounding, name + "output"), fused_(stage.fused) {}
+    FloatStage(const DescribedStage& stage, const std::string& name, std::size_t keeps_each = 1)
+        : input_(stage.in),
+          output_(stage.out, stage.rounding, name + "output"),
+          fused_(stage.fused),
+          kept_(keeps_each) {}
 
     void reset() override {
         output_.reset();
+        kept_.reset();
         forget();
     }
 
+    std::size_t outputs_for(std::size_t inputs) const override { return kept_.count_of(inputs); }
+
     void process(std::span<const std::int64_t> in, std::span<std::int64_t> out) override {
-        for (std::size_t i = 0; i < in.size(); ++i) out[i] = output_(step(input_(in[i])));
+        auto result = out.begin();
+        for (const std::int64_t x : in) {
+            take(input_(x));
+            if (kept_.keeps()) *result++ = output_(result_of_taken());
+        }
     }
 
     void append_state(std::vector<std::int64_t>& state) const override {
         for (const float value : floats()) state.push_back(bits_of_float(value));
+        if (kept_.has_state()) state.push_back(kept_.state());
     }
 
     bool take_state(std::span<const std::int64_t>& state) override {
@@ -50,13 +61,18 @@ public:
         }
         set_floats(values);
         state = state.subspan(values.size());
+        if (!kept_.has_state()) return true;
+        if (state.empty() || !kept_.set_state(state.front())) return false;
+        state = state.subspan(1);
         return true;
     }
 
     void append_reaches(std::vector<NodeReach>& reaches) const override { reaches.push_back(output_.reach()); }
 
 protected:
-    virtual float step(float x) = 0;
+    /// One sample; what is computed of it, by result_of_taken(), only where it is kept.
+    virtual void take(float x) = 0;
+    virtual float result_of_taken() = 0;
     virtual void forget() = 0;
     virtual std::vector<float> floats() const = 0;
     virtual void set_floats(std::span<const float> values) = 0;
@@ -66,6 +82,22 @@ private:
     FloatInput input_;
     FloatOutput output_;
     bool fused_;
+    KeptSamples kept_;
+};
+
+/// One result for each sample.
+class FloatStep : public FloatStage {
+public:
+    using FloatStage::FloatStage;
+
+protected:
+    virtual float step(float x) = 0;
+
+private:
+    void take(float x) override { taken_ = x; }
+    float result_of_taken() override { return step(taken_); }
+
+    float taken_ = 0.0f;
 };
 
 std::vector<float> newest_first(const History<float>& history, std::size_t count) {
@@ -78,8 +110,8 @@ std::vector<float> newest_first(const History<float>& history, std::size_t count
 class FloatDirect final : public FloatStage {
 public:
     FloatDirect(const DescribedStage& stage, std::vector<FloatTap> forward, std::vector<FloatTap> feedback,
-                const std::string& name)
-        : FloatStage(stage, name),
+                std::size_t keeps_each, const std::string& name)
+        : FloatStage(stage, name, keeps_each),
           forward_(std::move(forward)),
           feedback_(std::move(feedback)),
           inputs_(deepest(forward_) + 1),
@@ -92,8 +124,8 @@ private:
         return depth;
     }
 
-    float step(float x) override {
-        inputs_.push(x);
+    void take(float x) override { inputs_.push(x); }
+    float result_of_taken() override {
         float sum = forward_[0].times * inputs_.ago(forward_[0].delay + 1);
         for (std::size_t k = 1; k < forward_.size(); ++k) {
             sum = with_product(sum, forward_[k].times, inputs_.ago(forward_[k].delay + 1), fused());
@@ -120,11 +152,11 @@ private:
     History<float> inputs_, results_;
 };
 
-class FloatDirect2 final : public FloatStage {
+class FloatDirect2 final : public FloatStep {
 public:
     FloatDirect2(const DescribedStage& stage, std::vector<float> forward, std::vector<float> feedback,
                  const std::string& name)
-        : FloatStage(stage, name),
+        : FloatStep(stage, name),
           forward_(std::move(forward)),
           feedback_(std::move(feedback)),
           states_(std::max(forward_.size(), feedback_.size() + 1)) {}
@@ -147,11 +179,11 @@ private:
     History<float> states_;
 };
 
-class FloatTransposed2 final : public FloatStage {
+class FloatTransposed2 final : public FloatStep {
 public:
     FloatTransposed2(const DescribedStage& stage, std::vector<float> forward, std::vector<float> feedback,
                      const std::string& name)
-        : FloatStage(stage, name),
+        : FloatStep(stage, name),
           forward_(std::move(forward)),
           feedback_(std::move(feedback)),
           states_(std::max(forward_.size() - 1, feedback_.size()), 0.0f) {}
@@ -182,10 +214,10 @@ private:
     std::vector<float> states_;
 };
 
-class FloatOnePole final : public FloatStage {
+class FloatOnePole final : public FloatStep {
 public:
     FloatOnePole(const DescribedStage& stage, float coefficient, const std::string& name)
-        : FloatStage(stage, name), leaks_(stage.structure == Structure::leak), coefficient_(coefficient) {}
+        : FloatStep(stage, name), leaks_(stage.structure == Structure::leak), coefficient_(coefficient) {}
 
 private:
     float step(float x) override {
@@ -206,10 +238,10 @@ private:
     float state_ = 0.0f;
 };
 
-class FloatMovingAverage final : public FloatStage {
+class FloatMovingAverage final : public FloatStep {
 public:
     FloatMovingAverage(const DescribedStage& stage, const std::string& name)
-        : FloatStage(stage, name),
+        : FloatStep(stage, name),
           points_(static_cast<std::size_t>(std::get<MovingAverage>(stage.stage.design).points)),
           divisor_(static_cast<float>(points_)),
           reciprocal_(1.0f / divisor_),
@@ -264,8 +296,10 @@ std::vector<FloatTap> in_a_row(const std::vector<float>& numbers, std::size_t fi
     return taps;
 }
 
-std::unique_ptr<StageTwin> make_section(const DescribedStage& stage, const Recurrence& section,
-                                        const std::string& name) {
+}  // namespace
+
+std::unique_ptr<StageTwin> make_float_section_twin(const DescribedStage& stage, const Recurrence& section,
+                                                   const std::string& name) {
     std::vector<float> forward = in_float(section.forward, 1.0), feedback = in_float(section.feedback, -1.0);
     switch (stage.structure) {
         case Structure::direct_2:
@@ -276,30 +310,28 @@ std::unique_ptr<StageTwin> make_section(const DescribedStage& stage, const Recur
         case Structure::leak:
             return std::make_unique<FloatOnePole>(stage, forward.front(), name);
         default:
-            return std::make_unique<FloatDirect>(stage, in_a_row(forward, 0), in_a_row(feedback, 1), name);
+            return std::make_unique<FloatDirect>(stage, in_a_row(forward, 0), in_a_row(feedback, 1), 1, name);
     }
 }
 
-}  // namespace
+std::unique_ptr<StageTwin> make_float_fir_twin(const DescribedStage& stage, const std::vector<double>& taps,
+                                               std::size_t keeps_each, const std::string& name) {
+    std::vector<FloatTap> forward = in_a_row(in_float(taps, 1.0), 0);
+    if (stage.summation == Summation::oldest_first) std::reverse(forward.begin(), forward.end());
+    return std::make_unique<FloatDirect>(stage, std::move(forward), std::vector<FloatTap>{}, keeps_each, name);
+}
 
-std::unique_ptr<StageTwin> make_float_twin(const DescribedStage& stage, const Recurrence* section,
-                                           const std::string& name) {
-    if (section != nullptr) return make_section(stage, *section, name);
-    const FilterDesign design = with_rounded_coefficients(stage.stage).design;
-    if (const auto* fir = std::get_if<Fir>(&design)) {
-        std::vector<FloatTap> taps = in_a_row(in_float(fir->taps, 1.0), 0);
-        if (stage.summation == Summation::oldest_first) std::reverse(taps.begin(), taps.end());
-        return std::make_unique<FloatDirect>(stage, std::move(taps), std::vector<FloatTap>{}, name);
-    }
-    if (const auto* comb = std::get_if<Comb>(&design)) {
-        const auto delay = static_cast<std::size_t>(comb->delay_samples);
-        return std::make_unique<FloatDirect>(
-            stage,
-            std::vector<FloatTap>{{static_cast<float>(comb->direct), 0}, {static_cast<float>(comb->forward), delay}},
-            std::vector<FloatTap>{{static_cast<float>(-comb->feedback), delay}}, name);
-    }
-    if (std::holds_alternative<MovingAverage>(design)) return std::make_unique<FloatMovingAverage>(stage, name);
-    return nullptr;
+std::unique_ptr<StageTwin> make_float_comb_twin(const DescribedStage& stage, const std::string& name) {
+    const auto comb = std::get<Comb>(with_rounded_coefficients(stage.stage).design);
+    const auto delay = static_cast<std::size_t>(comb.delay_samples);
+    const std::vector<float> forward = in_float({comb.direct, comb.forward}, 1.0);
+    const std::vector<float> feedback = in_float({comb.feedback}, -1.0);
+    return std::make_unique<FloatDirect>(stage, std::vector<FloatTap>{{forward[0], 0}, {forward[1], delay}},
+                                         std::vector<FloatTap>{{feedback[0], delay}}, 1, name);
+}
+
+std::unique_ptr<StageTwin> make_float_average_twin(const DescribedStage& stage, const std::string& name) {
+    return std::make_unique<FloatMovingAverage>(stage, name);
 }
 
 }  // namespace halflsb

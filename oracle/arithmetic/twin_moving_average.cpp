@@ -1,19 +1,11 @@
 // Moving averages: a sum that runs on or one that is taken afresh, and its division.
 #include "oracle/arithmetic/history.hpp"
+#include "oracle/arithmetic/quotient.hpp"
 #include "oracle/arithmetic/stored_terms.hpp"
 
 namespace halflsb {
 
 namespace {
-
-/// y = N / D with N = S times 2^up + what the last division left, D in the same steps.
-struct Quotient {
-    std::int64_t times = 1;  ///< R of a reciprocal
-    int up = 0;              ///< the sum in steps of the output
-    Int128 divisor = 1;
-    bool saves_fraction = false;
-    Rounding rounding = Rounding::floor;
-};
 
 class MovingAverageTwin final : public StageTwin {
 public:
@@ -30,8 +22,8 @@ public:
         accumulator_.reset();
         output_.reset();
         inputs_.reset();
+        quotient_.reset();
         sum_ = 0;
-        rest_ = 0;
     }
 
     void process(std::span<const std::int64_t> in, std::span<std::int64_t> out) override {
@@ -43,7 +35,7 @@ public:
             }
             inputs_.push(x);
             if (!is_running_) sum_ = fresh_sum();
-            out[i] = static_cast<std::int64_t>(output_.hold(quotient()));
+            out[i] = static_cast<std::int64_t>(output_.hold(quotient_(sum_)));
         }
     }
 
@@ -51,12 +43,12 @@ public:
         // The oldest has gone where the sum is fresh.
         inputs_.for_each_newest_first(words_of_inputs(), [&](std::int64_t word) { state.push_back(word); });
         if (is_running_) state.push_back(static_cast<std::int64_t>(sum_));
-        if (quotient_.saves_fraction) state.push_back(static_cast<std::int64_t>(rest_));
+        if (quotient_.saves_fraction()) state.push_back(quotient_.rest());
     }
 
     bool take_state(std::span<const std::int64_t>& state) override {
         const std::size_t inputs = words_of_inputs();
-        if (state.size() < inputs + (is_running_ ? 1 : 0) + (quotient_.saves_fraction ? 1 : 0)) return false;
+        if (state.size() < inputs + (is_running_ ? 1 : 0) + (quotient_.saves_fraction() ? 1 : 0)) return false;
         inputs_.set(state.first(inputs));
         state = state.subspan(inputs);
         if (is_running_) {
@@ -64,12 +56,10 @@ public:
             if (!accumulator_.holds(state.front())) return false;
             state = state.subspan(1);
         }
-        if (quotient_.saves_fraction) {
-            rest_ = state.front();
-            if (!(rest_ > -quotient_.divisor && rest_ < quotient_.divisor)) return false;
-            state = state.subspan(1);
-        }
-        return true;
+        if (!quotient_.saves_fraction()) return true;
+        const std::int64_t rest = state.front();
+        state = state.subspan(1);
+        return quotient_.set_rest(rest);
     }
 
     void append_reaches(std::vector<NodeReach>& reaches) const override {
@@ -89,22 +79,9 @@ private:
         return sum;
     }
 
-    Int128 quotient() {
-        const Int128 number = static_cast<Int128>(sum_ * quotient_.times) * (Int128{1} << quotient_.up) + rest_;
-        const Int128 divisor = quotient_.divisor;
-        // Where both are small the processor divides at once.
-        constexpr Int128 small = Int128{1} << 61;
-        const Int128 y =
-            number < small && number > -small && divisor < small
-                ? divided(static_cast<std::int64_t>(number), static_cast<std::int64_t>(divisor), quotient_.rounding)
-                : divided(number, divisor, quotient_.rounding);
-        if (quotient_.saves_fraction) rest_ = number - y * divisor;
-        return y;
-    }
-
     bool is_running_, oldest_first_;
     Quotient quotient_;
-    Int128 sum_ = 0, rest_ = 0;
+    Int128 sum_ = 0;
     Register<Int128> accumulator_, output_;
     History<std::int64_t> inputs_;
 };
@@ -113,23 +90,20 @@ private:
 
 std::unique_ptr<StageTwin> make_moving_average_twin(const DescribedStage& stage, const std::string& name) {
     const int points = std::get<MovingAverage>(stage.stage.design).points;
-    // Of the output's fraction bits more than the input's; a power of two common to number and divisor goes.
-    int up = stage.out.word.fraction_bits - stage.in.word.fraction_bits;
-    Quotient quotient{.saves_fraction = stage.fraction_saving, .rounding = stage.rounding};
+    Division128 division{.divisor = points,
+                         .up = stage.out.word.fraction_bits - stage.in.word.fraction_bits,
+                         .saves_fraction = stage.fraction_saving,
+                         .rounding = stage.rounding,
+                         .largest_number = std::min(std::ldexp(1.0, stage.accumulator_bits - 1),
+                                                    points * largest_number(stage.in.word))};
     if (stage.division == Division::reciprocal) {
-        quotient.times = stored_coefficient(stage, 1.0 / points);
-        up -= stage.coefficient_fraction_bits;
-    } else {
-        quotient.divisor = points;
+        division.times = stored_coefficient(stage, 1.0 / points);
+        division.divisor = 1;
+        division.up -= stage.coefficient_fraction_bits;
     }
-    const double largest_sum =
-        std::min(std::ldexp(1.0, stage.accumulator_bits - 1), points * largest_number(stage.in.word));
-    const double number = std::ldexp(largest_sum * static_cast<double>(quotient.times), std::max(up, 0));
-    const double divisor = std::ldexp(static_cast<double>(quotient.divisor), std::max(-up, 0));
-    if (!(number < 0x1p125 && divisor < 0x1p125)) return nullptr;
-    quotient.up = std::max(up, 0);
-    quotient.divisor *= Int128{1} << std::max(-up, 0);
-    return std::make_unique<MovingAverageTwin>(stage, quotient, name);
+    const auto quotient = Quotient::of(division);
+    if (!quotient) return nullptr;
+    return std::make_unique<MovingAverageTwin>(stage, *quotient, name);
 }
 
 }  // namespace halflsb

@@ -53,7 +53,7 @@ TEST_CASE("float32: a product and a sum are rounded once where they are fused, w
     const float edge = 1.0f + 0x1p-12f;
     CHECK(std::fmaf(edge, edge, 0x1p-60f) == 1.0f + 0x1p-11f + 0x1p-23f);
     CHECK(std::fmaf(edge, edge, -0x1p-60f) == 1.0f + 0x1p-11f);
-    CHECK(std::fmaf(edge, edge, 0.0f) == 1.0f + 0x1p-11f);  // the tie itself, to even
+    CHECK(std::fmaf(edge, edge, 0.0f) == 1.0f + 0x1p-11f);         // the tie itself, to even
     CHECK(std::fmaf(0x1p-75f, 0x1p-75f, 0x1p-149f) == 0x1p-148f);  // one and a half of the least float
     CHECK(std::fmaf(0x1.fffffep127f, 2.0f, -0x1.fffffep127f) == 0x1.fffffep127f);
     Random random(41);

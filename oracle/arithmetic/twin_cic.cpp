@@ -1,0 +1,160 @@
+// CIC decimators and interpolators as firmware has them: integrators and combs in registers of one width.
+//
+// Registers that wrap and hold the last comb lose nothing (E. B. Hogenauer, "An economical class of digital filters
+// for decimation and interpolation", 1981). Where nobody said a width, they have just that.
+#include "oracle/arithmetic/history.hpp"
+#include "oracle/arithmetic/kept_samples.hpp"
+#include "oracle/arithmetic/quotient.hpp"
+#include "oracle/arithmetic/stage_twin.hpp"
+#include "oracle/filters/rates.hpp"
+
+namespace halflsb {
+
+namespace {
+
+struct CicPlan {
+    std::size_t order = 1, factor = 2, delay = 1;
+    bool decimates = true;
+    Word registers;
+};
+
+class CicTwin final : public StageTwin {
+public:
+    CicTwin(const CicPlan& plan, const Quotient& quotient, const Word& out, const std::string& name)
+        : plan_(plan),
+          quotient_(quotient),
+          output_(name + "output", out),
+          integrals_(plan.order, 0),
+          past_(plan.order, History<std::int64_t>(plan.delay)),
+          kept_(plan.factor) {
+        for (std::size_t k = 1; k <= plan.order; ++k) {
+            integrators_.emplace_back(name + "integrator " + std::to_string(k), plan.registers);
+            combs_.emplace_back(name + "comb " + std::to_string(k), plan.registers);
+        }
+    }
+
+    void reset() override {
+        for (auto* list : {&integrators_, &combs_}) {
+            for (Register<Int128>& word : *list) word.reset();
+        }
+        output_.reset();
+        std::fill(integrals_.begin(), integrals_.end(), 0);
+        for (auto& past : past_) past.reset();
+        kept_.reset();
+    }
+
+    std::size_t outputs_for(std::size_t inputs) const override {
+        return plan_.decimates ? kept_.count_of(inputs) : inputs * plan_.factor;
+    }
+
+    void process(std::span<const std::int64_t> in, std::span<std::int64_t> out) override {
+        std::size_t written = 0;
+        for (const std::int64_t x : in) {
+            if (plan_.decimates) {
+                const Int128 integral = integrated(x);
+                if (kept_.keeps()) out[written++] = returned(combed(integral));
+            } else {
+                Int128 next = combed(x);
+                for (std::size_t k = 0; k < plan_.factor; ++k) {
+                    out[written++] = returned(integrated(next));
+                    next = 0;
+                }
+            }
+        }
+    }
+
+    void append_state(std::vector<std::int64_t>& state) const override {
+        const auto put = [&](std::int64_t word) { state.push_back(word); };
+        for (const Int128 integral : integrals_) put(static_cast<std::int64_t>(integral));
+        for (const auto& past : past_) past.for_each_newest_first(plan_.delay, put);
+        if (plan_.decimates) put(kept_.state());
+    }
+
+    bool take_state(std::span<const std::int64_t>& state) override {
+        const std::size_t combs = plan_.order * plan_.delay;
+        if (state.size() < plan_.order + combs + (plan_.decimates ? 1 : 0)) return false;
+        for (const std::int64_t word : state.first(plan_.order + combs)) {
+            if (!integrators_.front().holds(word)) return false;
+        }
+        for (std::size_t k = 0; k < plan_.order; ++k) {
+            integrals_[k] = state[k];
+            past_[k].set(state.subspan(plan_.order + k * plan_.delay, plan_.delay));
+        }
+        state = state.subspan(plan_.order + combs);
+        if (!plan_.decimates) return true;
+        const std::int64_t until_next = state.front();
+        state = state.subspan(1);
+        return kept_.set_state(until_next);
+    }
+
+    void append_reaches(std::vector<NodeReach>& reaches) const override {
+        // What wraps on its way says nothing; the last register is the one that must hold.
+        if (plan_.registers.overflow == Overflow::saturate) {
+            for (const auto* list : {&integrators_, &combs_}) {
+                for (const Register<Int128>& word : *list) reaches.push_back(word.reach());
+            }
+        }
+        reaches.push_back(output_.reach());
+    }
+
+private:
+    Int128 integrated(Int128 number) {
+        for (std::size_t k = 0; k < plan_.order; ++k) {
+            number = integrals_[k] = integrators_[k].hold(integrals_[k] + number);
+        }
+        return number;
+    }
+    Int128 combed(Int128 number) {
+        for (std::size_t k = 0; k < plan_.order; ++k) {
+            const Int128 before = past_[k].ago(plan_.delay);
+            past_[k].push(static_cast<std::int64_t>(number));
+            number = combs_[k].hold(number - before);
+        }
+        return number;
+    }
+    std::int64_t returned(Int128 number) { return static_cast<std::int64_t>(output_.hold(quotient_(number))); }
+
+    CicPlan plan_;
+    Quotient quotient_;
+    std::vector<Register<Int128>> integrators_, combs_;
+    Register<Int128> output_;
+    std::vector<Int128> integrals_;
+    std::vector<History<std::int64_t>> past_;  ///< what went into each comb
+    KeptSamples kept_;
+};
+
+template <class Cic>
+std::unique_ptr<StageTwin> make(const DescribedStage& stage, const Cic& design, bool decimates,
+                                const std::string& name) {
+    const int integer_bits = stage.in.word.bits + growth_bits(design);
+    CicPlan plan{static_cast<std::size_t>(design.order), static_cast<std::size_t>(design.factor),
+                 static_cast<std::size_t>(design.delay_samples), decimates, stage.state};
+    // Saturation never comes where nobody limited the registers.
+    if (stage.state.bits == wide_bits) plan.registers = {integer_bits, stage.in.word.fraction_bits, Overflow::wrap};
+    if (plan.registers.bits > 64) return nullptr;
+    Division128 division{.up = stage.out.word.fraction_bits - plan.registers.fraction_bits,
+                         .rounding = stage.rounding,
+                         .largest_number = largest_number(plan.registers)};
+    if (design.shift_bits) {
+        division.up -= *design.shift_bits;
+    } else {
+        for (int k = 0; k < design.order; ++k) {
+            division.divisor *= design.delay_samples;
+            if (decimates || k > 0) division.divisor *= design.factor;
+        }
+    }
+    const auto quotient = Quotient::of(division);
+    if (!quotient) return nullptr;
+    return std::make_unique<CicTwin>(plan, *quotient, stage.out.word, name);
+}
+
+}  // namespace
+
+std::unique_ptr<StageTwin> make_cic_twin(const DescribedStage& stage, const std::string& name) {
+    if (const auto* decimator = std::get_if<CicDecimator>(&stage.stage.design)) {
+        return make(stage, *decimator, true, name);
+    }
+    return make(stage, std::get<CicInterpolator>(stage.stage.design), false, name);
+}
+
+}  // namespace halflsb
