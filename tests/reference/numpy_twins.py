@@ -15,7 +15,7 @@ from fractions import Fraction
 import numpy as np
 import twin_float
 import twin_integer
-from twin_words import Port, held, rounded, shortened
+from twin_words import AS_MANY_AS_IT_TAKES, Port, held, rounded, shortened
 
 STRUCTURES = {  # of each kind, the first one when left out
     "fir": ["direct-1"], "fir-decimator": ["direct-1"], "fir-interpolator": ["direct-1"], "comb": ["direct-1"],
@@ -110,7 +110,7 @@ def made_stage(kind, words, arithmetic, source, target):
         fraction_bits = words["coefficient_fraction_bits"]
     return Stage(
         kind, words, source, target, number, said("structure", STRUCTURES[kind][0]), rounding,
-        said("output_rounding", rounding), overflow, said("state_overflow", overflow), said("accumulator_bits", 64),
+        said("output_rounding", rounding), overflow, said("state_overflow", overflow), said("accumulator_bits", AS_MANY_AS_IT_TAKES),
         said("accumulator_overflow", "wrap"), said("accumulator_fraction_bits"), said("rounding_at", "sum"),
         said("fraction_saving", "off") == "on", fraction_bits, said("coefficient_rounding", "half-away"),
         said("feedback_coefficients", "added"), said("state_bits"), said("state_fraction_bits"), said("state_overflow"),

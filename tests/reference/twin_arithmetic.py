@@ -81,13 +81,11 @@ def integer_arithmetic(draw, kind, words, source, target):
         if needed > 64:
             return None
         said["accumulator_bits"] = draw.one_of([64, needed])
-        if structure == "difference" and f + max(source.fraction, state_fraction) > state_fraction:
-            maybe("fraction_saving", 0.3, ["on", "off"])
         return said
 
     if kind == "biquad-cascade" and structure == "direct-1":
         maybe("rounding_at", 0.5, ["sum", "product", "output"])
-    elif structure != "transposed-2":
+    elif structure != "transposed-2" and kind != "one-pole":
         maybe("rounding_at", 0.3, ["sum", "product"])
     by_product = said.get("rounding_at") == "product"
     if structure == "direct-2":

@@ -6,7 +6,7 @@ output words that come of it: none or several where the rate changes.
 from collections import deque
 from fractions import Fraction
 
-from twin_words import divided, held, rounded, shortened
+from twin_words import AS_MANY_AS_IT_TAKES, divided, held, rounded, shortened
 
 
 class Adder:
@@ -263,7 +263,7 @@ class Cic:
         self.index = -1
 
     def hold(self, number):
-        return held(number, self.stage.said_state_bits or 64, self.stage.said_state_overflow or "wrap")
+        return held(number, self.stage.said_state_bits or AS_MANY_AS_IT_TAKES, self.stage.said_state_overflow or "wrap")
 
     def integrated(self, value):
         for k in range(self.order):

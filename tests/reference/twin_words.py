@@ -12,6 +12,8 @@ FORMATS = {
     "u8": ("u", 8, 0), "u12": ("u", 12, 0), "u16": ("u", 16, 0), "f32": ("f", 32, 0),
 }  # fmt: skip
 
+AS_MANY_AS_IT_TAKES = 128  # bits of a word that nobody limited
+
 
 def half_even(number, divisor):
     quotient, rest = divmod(number, divisor)
