@@ -2,7 +2,7 @@
 """Filters in stated arithmetic, to the bit: docs/arithmetic.md once more, in Python and NumPy, independent of
 oracle/arithmetic.
 
-    numpy_twins.py PLAN.toml <CODES >CODES     the first channel's codes through the plan's chain, a decimal number a line
+    numpy_twins.py PLAN.toml [ROOT] <CODES >CODES     codes through the plan's chain, a decimal number a line
 
 A chain is made from the words of a plan: make_chain([(kind, words, arithmetic)], input, output, output_per_input).
 """
@@ -190,22 +190,35 @@ def chain_of_case(case):
     return make_chain(case["stages"], case["input"], case["output"], case["output_per_input"])
 
 
-def chain_of_plan(path):
-    """The chain of a plan file; coefficients of files that it names are read."""
-    path = pathlib.Path(path)
-    plan = tomllib.loads(path.read_text(encoding="utf-8"))
-    stages = []
+def plan_tables(path, root):
+    """A plan with what it includes: tables joined key by key, lists in order, the included first."""
+    plan = tomllib.loads((root / path).read_text(encoding="utf-8"))
+    tables = {}
+    for part in [plan_tables(name, root) for name in plan.pop("include", [])] + [plan]:
+        for name, value in part.items():
+            if isinstance(value, dict):
+                tables[name] = tables.get(name, {}) | value
+            else:
+                tables[name] = tables.get(name, []) + value if isinstance(value, list) else value
+    return tables
+
+
+def chain_of_plan(path, root=None, other={}):
+    """The chain of a plan file. Files that it names lie under the root, the folder of the plan when left out. `other` are
+    words of the arithmetic that take the place of those of the plan."""
+    root = pathlib.Path(root or pathlib.Path(path).parent)
+    plan, stages = plan_tables(pathlib.Path(path).absolute(), root), []
     for table in plan["filter"]:
         words = {name: value for name, value in table.items() if name not in ("kind", "arithmetic")}
         for name in ("taps", "sections"):
             if f"{name}_file" in words:
-                numbers = [float(text) for text in (path.parent / words.pop(f"{name}_file")).read_text().split()]
+                numbers = [float(text) for text in (root / words.pop(f"{name}_file")).read_text().split()]
                 words[name] = numbers if name == "taps" else [numbers[i : i + 5] for i in range(0, len(numbers), 5)]
-        stages.append((table["kind"], words, plan.get("arithmetic", {}) | table.get("arithmetic", {})))
+        stages.append((table["kind"], words, plan.get("arithmetic", {}) | table.get("arithmetic", {}) | other))
     signal = plan["signal"]
     return make_chain(stages, signal["input"], signal["output"], signal.get("output_per_input", 1.0))
 
 
 if __name__ == "__main__":
     given = [int(line) for line in sys.stdin]
-    print("\n".join(str(code) for code in chain_of_plan(sys.argv[1]).process(given)))
+    print("\n".join(str(code) for code in chain_of_plan(*sys.argv[1:3]).process(given)))
