@@ -7,6 +7,7 @@
 #include <cstdint>
 #include <memory>
 #include <span>
+#include <string>
 #include <vector>
 
 #include "oracle/arithmetic/described.hpp"
@@ -31,11 +32,15 @@ public:
     /// Everything that the next output depends on, in a fixed order: two twins of one description with equal states
     /// return the same from then on.
     virtual std::vector<std::int64_t> state() const = 0;
+    /// Takes what state() gave. False, and the twin is reset, for what no state can be: the wrong number of words, one
+    /// beyond the ends of its word.
+    virtual bool set_state(std::span<const std::int64_t> words) = 0;
     /// Accumulators, states and outputs, in the order of the signal.
     virtual std::vector<NodeReach> reaches() const = 0;
 };
 
-/// nullptr where the description is incomplete (`missing`).
+/// nullptr where the description is incomplete (`missing`), and where nobody limited a sum that can need more than 126
+/// bits (a wide accumulator of products of two words of 64).
 std::unique_ptr<Twin> make_twin(const DescribedChain& chain);
 
 }  // namespace halflsb

@@ -4,6 +4,7 @@
 #include <charconv>
 #include <cstdlib>
 
+#include "oracle/arithmetic/described.hpp"
 #include "oracle/judge/latency_evidence.hpp"
 #include "oracle/judge/response_verdict.hpp"
 
@@ -69,6 +70,42 @@ void check_unchanged(const Case& the_case, const Rule& rule, std::vector<Refusal
                             "\" starts running, so its first samples hang on what ran before it and cannot equal "
                             "those of an accepted run",
                         "start it with \"reset\" or \"flush\", or write the rule in another case"});
+}
+
+/// Whether `start_samples` zeros leave nothing in the firmware's states, rounding errors and remainders included.
+bool forgets_all(const DescribedStage& stage) {
+    if (stage.fraction_saving) return false;
+    if (std::holds_alternative<Fir>(stage.stage.design)) return true;
+    return std::holds_alternative<MovingAverage>(stage.stage.design) &&
+           (stage.number == NumberKind::integer || stage.structure == Structure::fresh_sum);
+}
+
+/// A twin needs the whole arithmetic, and starts as the board does.
+void check_exact(const Plan& plan, const Case& the_case, const Rule& rule, std::vector<Refusal>& refusals) {
+    if (plan.filter_is_unknown) return;
+    bool forgets = true;
+    for (int channel = 1; channel <= plan.signal.channels; ++channel) {
+        const auto result = describe(chain_of(plan, the_case, channel), plan.signal.input, plan.signal.output,
+                                     plan.signal.output_per_input);
+        if (!result.described) return;  // the reader has refused it
+        if (const auto& missing = result.described->missing) {
+            const bool is_alone = result.described->stages.size() == 1;
+            refusals.push_back({rule.position,
+                                "exact needs the whole arithmetic, and " +
+                                    (is_alone ? "" : "of stage " + std::to_string(missing->stage + 1) + " ") +
+                                    missing->error.problem,
+                                missing->error.remedy});
+            return;
+        }
+        for (const DescribedStage& stage : result.described->stages) forgets = forgets && forgets_all(stage);
+    }
+    if (the_case.start == Start::running || (the_case.start == Start::flush && !forgets)) {
+        refusals.push_back({rule.position,
+                            "case \"" + the_case.name + "\" starts " +
+                                (the_case.start == Start::running ? "running" : "with a flush") +
+                                ", which leaves the firmware in a state that nobody knows to the bit",
+                            "start it with \"reset\", or write the rule in another case"});
+    }
 }
 
 /// A running case must have something left to judge.
@@ -138,6 +175,8 @@ std::vector<Refusal> refusals(const Plan& plan, const Case& the_case) {
             check_response(plan, the_case, rule, found);
         } else if (std::holds_alternative<UnchangedRule>(rule.kind)) {
             check_unchanged(the_case, rule, found);
+        } else if (std::holds_alternative<ExactRule>(rule.kind)) {
+            check_exact(plan, the_case, rule, found);
         }
     }
     return found;

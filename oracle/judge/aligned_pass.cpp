@@ -27,7 +27,6 @@ AlignedPass::AlignedPass(const Plan& plan, const Case& the_case, int channel, in
       first_judged_(first_judged_sample(the_case)),
       to_skip_(lag_samples < 0 ? static_cast<std::size_t>(-lag_samples) : 0) {
     if (first_judged_ > 0 && lag_samples > 0) first_judged_ += lag_samples;
-    bool wants_response = false;
     for (const Rule& rule : the_case.rules) {
         if (const auto* error = std::get_if<ErrorRule>(&rule.kind); error != nullptr && says_something(*error)) {
             std::optional<double> limit;
@@ -35,16 +34,11 @@ AlignedPass::AlignedPass(const Plan& plan, const Case& the_case, int channel, in
             error_rules_.push_back({&rule, ErrorMeasure(limit), FirstBadWatch(plan.signal.output)});
             error_rules_.back().measure.start_at(first_judged_);
         }
-        wants_response = wants_response || (is_driven_ && std::holds_alternative<ResponseRule>(rule.kind));
     }
-    if (wants_response) response_measure_ = make_response_measure(the_case);
-    if (lag_samples > 0) {
-        const auto silence = static_cast<std::size_t>(lag_samples);
-        codes_.assign(silence, zero_code(plan.signal.input));
-        stimulus_.assign(silence, 0.0);
-        declared_.assign(silence, 0.0);
-        if (wants_response) design_.assign(silence, 0.0);
-    }
+    const WantedReferences wanted = wanted_references(the_case, channel);
+    if (wanted.design) response_measure_ = make_response_measure(the_case);
+    if (wanted.twin) exact_.emplace(plan.signal.output);
+    if (lag_samples > 0) waiting_.append_silence(static_cast<std::size_t>(lag_samples), plan.signal, wanted);
 }
 
 bool AlignedPass::says_something(const ErrorRule& rule) const {
@@ -54,58 +48,39 @@ bool AlignedPass::says_something(const ErrorRule& rule) const {
 
 void AlignedPass::add(const ReferenceBlock& reference, std::span<const Code> response) {
     if (lag_ == 0) {
-        measure_judged(reference.codes, reference.stimulus, reference.declared, reference.design, response);
+        measure_judged(reference, response);
         return;
     }
     const auto skip = std::min(to_skip_, reference.codes.size());
     to_skip_ -= skip;
-    const auto append = [skip](auto& waiting, auto fresh) {
-        if (!fresh.empty())
-            waiting.insert(waiting.end(), fresh.begin() + static_cast<std::ptrdiff_t>(skip), fresh.end());
-    };
-    append(codes_, reference.codes);
-    append(stimulus_, reference.stimulus);
-    append(declared_, reference.declared);
-    append(design_, reference.design);
+    waiting_.append(reference.after(skip));
     response_.insert(response_.end(), response.begin(), response.end());
-
-    const std::size_t ready = std::min(codes_.size(), response_.size());
-    const auto head = [ready](auto& waiting) { return std::span(waiting).first(std::min(ready, waiting.size())); };
-    measure_judged(head(codes_), head(stimulus_), head(declared_), head(design_), head(response_));
-    const auto drop = [ready](auto& waiting) {
-        waiting.erase(waiting.begin(), waiting.begin() + static_cast<std::ptrdiff_t>(std::min(ready, waiting.size())));
-    };
-    drop(codes_);
-    drop(stimulus_);
-    drop(declared_);
-    drop(design_);
-    drop(response_);
+    const std::size_t ready = std::min(waiting_.size(), response_.size());
+    measure_judged(waiting_.first(ready), std::span(response_).first(ready));
+    waiting_.drop(ready);
+    response_.erase(response_.begin(), response_.begin() + static_cast<std::ptrdiff_t>(ready));
 }
 
-void AlignedPass::measure_judged(std::span<const Code> codes, std::span<const double> stimulus,
-                                 std::span<const double> declared, std::span<const double> design,
-                                 std::span<const Code> response) {
+void AlignedPass::measure_judged(const ReferenceBlock& reference, std::span<const Code> response) {
     const auto count = static_cast<std::int64_t>(response.size());
     const auto unjudged = static_cast<std::size_t>(std::clamp<std::int64_t>(first_judged_ - next_index_, 0, count));
     next_index_ += static_cast<std::int64_t>(unjudged);
-    const auto rest = [unjudged](auto span) { return span.subspan(std::min(unjudged, span.size())); };
-    measure(rest(codes), rest(stimulus), rest(declared), rest(design), rest(response));
+    measure(reference.after(unjudged), response.subspan(unjudged));
 }
 
-void AlignedPass::measure(std::span<const Code> codes, std::span<const double> stimulus,
-                          std::span<const double> declared, std::span<const double> design,
-                          std::span<const Code> response) {
+void AlignedPass::measure(const ReferenceBlock& reference, std::span<const Code> response) {
     response_values_.resize(response.size());
     values_of(plan_.signal.output, response, response_values_);
     for (ErrorRuleState& state : error_rules_) {
-        state.measure.add(declared, response_values_);
-        state.watch.add(next_index_, codes, declared, response, state.measure.value().first_beyond);
+        state.measure.add(reference.declared, response_values_);
+        state.watch.add(next_index_, reference.codes, reference.declared, response, state.measure.value().first_beyond);
     }
+    if (exact_) exact_->add(next_index_, reference.codes, reference.twin, response);
     if (response_measure_) {
         design_error_.resize(response.size());
-        std::transform(response_values_.begin(), response_values_.end(), design.begin(), design_error_.begin(),
-                       [](double measured, double ideal) { return measured - ideal; });
-        response_measure_->add(stimulus, design_error_);
+        std::transform(response_values_.begin(), response_values_.end(), reference.design.begin(),
+                       design_error_.begin(), [](double measured, double ideal) { return measured - ideal; });
+        response_measure_->add(reference.stimulus, design_error_);
     }
     next_index_ += static_cast<std::int64_t>(response.size());
 }
@@ -175,6 +150,7 @@ std::optional<RuleVerdict> AlignedPass::verdict(const Rule& rule) const {
         if (!response_measure_) return std::nullopt;
         return judge_response(*response, rule, plan_, case_, channel_, response_measure_->value());
     }
+    if (std::holds_alternative<ExactRule>(rule.kind) && exact_) return exact_->verdict(rule);
     for (const ErrorRuleState& state : error_rules_) {
         if (state.rule == &rule) return error_verdict(state);
     }

@@ -17,11 +17,6 @@ const Rule* find_latency_rule(const Case& the_case) {
     return found == the_case.rules.end() ? nullptr : &*found;
 }
 
-bool has_response_rule(const Case& the_case) {
-    return std::any_of(the_case.rules.begin(), the_case.rules.end(),
-                       [](const Rule& rule) { return std::holds_alternative<ResponseRule>(rule.kind); });
-}
-
 std::string samples_text(int count) {
     return std::to_string(count) + (count == 1 || count == -1 ? " sample" : " samples");
 }
@@ -35,8 +30,8 @@ ChannelJudge::ChannelJudge(const Plan& plan, const Case& the_case, int channel)
       is_driven_(is_driven(the_case, channel)),
       latency_rule_(find_latency_rule(the_case)),
       expected_lag_(expected_lag_of(the_case)),
-      with_design_(is_driven_ && has_response_rule(the_case)),
-      reference_(plan, the_case, channel, with_design_),
+      wanted_(wanted_references(the_case, channel)),
+      reference_(plan, the_case, channel, wanted_),
       pass_(plan, the_case, channel, expected_lag_),
       window_(lag_window_of(the_case)),
       lag_(window_, expected_lag_, first_lag_sample(the_case, window_)),
@@ -71,8 +66,8 @@ bool ChannelJudge::begin_second_pass() {
     lags_ = lag_.value();
     const int measured = lags_->best_lag;
     if (!std::isfinite(lags_->residual_at(measured)) || measured == expected_lag_) return false;
-    second_.emplace(SecondPass{AlignedPass(plan_, case_, channel_, measured),
-                               ReferenceSource(plan_, case_, channel_, with_design_)});
+    second_.emplace(
+        SecondPass{AlignedPass(plan_, case_, channel_, measured), ReferenceSource(plan_, case_, channel_, wanted_)});
     return true;
 }
 

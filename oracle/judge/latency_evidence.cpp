@@ -39,7 +39,7 @@ LatencyEvidence evidence_of(const Plan& plan, const Case& the_case, int channel)
     evidence.expected_is_outside = std::abs(expected_lag_of(the_case)) > lag_window_of(the_case);
     const double sigma = latency_sigma(the_case, plan.signal);
     LagDiscrimination discrimination(evidence.window, first_lag_sample(the_case, evidence.window));
-    ReferenceSource reference(plan, the_case, channel, false);
+    ReferenceSource reference(plan, the_case, channel, {});
     SentBlock sent(plan, the_case);
     bool has_enough = false;
     for (std::int64_t first = 0; first < evidence.samples && !has_enough;) {

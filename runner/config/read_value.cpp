@@ -215,6 +215,8 @@ std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlE
             if (!number_of(parameter, value, std::string(parameter.name), context)) return std::nullopt;
             return value.integer;
         case ParameterType::real:
+            if (value.kind == TomlValue::Kind::text && !parameter.choices.empty())
+                return as_value(choice_of(parameter, value, context));
             return as_value(number_of(parameter, value, std::string(parameter.name), context));
         case ParameterType::text:
             return as_value(text_of(parameter, value, context));
