@@ -94,7 +94,7 @@ class Stage:
         if self.kind == "dc-blocker":
             pole = self.words["pole"]
             gain = 0.5 * (1.0 + pole) if self.words.get("gain") == "unity-at-nyquist" else 1.0
-            return [([gain, -gain, 0.0], [-pole, 0.0])]
+            return [([gain, -gain], [-pole])]
         return [(row[:3], row[-2:]) for row in self.words["sections"]]
 
 
@@ -130,10 +130,13 @@ def made_filter(stage):
     if stage.kind == "one-pole":
         if stage.structure != "direct-1":
             return module.OnePole(stage)
-        if stage.number == "float32":
-            pole = 1.0 - stage.one_pole_coefficient
-            return module.Direct1(stage, [(0, 1.0 - pole)], [(1, -pole)])
         # The firmware stores k alone: the pole is 1 - k as stored.
+        if stage.number == "float32":
+            k = stage.one_pole_coefficient
+            if stage.coefficient_fraction_bits is not None:
+                f, word = stage.one_pole_word
+                k = word * 2.0**-f
+            return module.Direct1(stage, [(0, k)], [(1, k - 1.0)])
         f, word = stage.one_pole_word
         stage.coefficient_fraction_bits = f
         return module.Direct1(stage, [(0, Fraction(word, 2**f))], [(1, Fraction(word, 2**f) - 1)])
