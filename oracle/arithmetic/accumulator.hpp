@@ -37,7 +37,7 @@ struct SumPlan {
     /// 64 bits are enough.
     bool is_narrow() const { return largest() < 0x1p61; }
     /// Not even 128 bits are.
-    bool is_too_wide() const { return !(largest() < 0x1p125); }
+    bool is_too_wide() const { return !(largest() <= 0x1p126); }
 };
 
 /// The largest size of the numbers of a word.

@@ -30,9 +30,19 @@ std::vector<NamedCoefficient> coefficients_of(const DescribedStage& described) {
         all.push_back({added ? "-" + name : std::move(name), added ? -a : a});
     };
     const FilterDesign& design = described.stage.design;
+    const auto list = [&](const char* name, const std::vector<double>& numbers) {
+        for (std::size_t k = 0; k < numbers.size(); ++k)
+            all.push_back({name + ("[" + std::to_string(k) + "]"), numbers[k]});
+    };
     if (const auto* fir = std::get_if<Fir>(&design)) {
-        for (std::size_t k = 0; k < fir->taps.size(); ++k)
-            all.push_back({"taps[" + std::to_string(k) + "]", fir->taps[k]});
+        list("taps", fir->taps);
+    } else if (const auto* decimator = std::get_if<FirDecimator>(&design)) {
+        list("taps", decimator->taps);
+    } else if (const auto* interpolator = std::get_if<FirInterpolator>(&design)) {
+        list("taps", interpolator->taps);
+    } else if (const auto* recursion = std::get_if<Recursion>(&design)) {
+        list("b", recursion->b);
+        for (std::size_t k = 1; k < recursion->a.size(); ++k) feedback("a[" + std::to_string(k) + "]", recursion->a[k]);
     } else if (const auto* comb = std::get_if<Comb>(&design)) {
         all = {{"direct", comb->direct}, {"forward", comb->forward}};
         feedback("feedback", comb->feedback);
@@ -102,16 +112,18 @@ int bits_for(double largest) {
 }
 
 std::optional<Error> accumulator_too_narrow(const DescribedStage& described) {
-    if (described.accumulator_bits == wide_bits) return std::nullopt;
+    const Family family = family_of(described.stage);
+    if (described.accumulator_bits == wide_bits || family == Family::median || family == Family::cic)
+        return std::nullopt;
     const Word& in = described.in.word;
-    const bool is_average = family_of(described.stage) == Family::average;
+    const bool is_average = family == Family::average;
     if (in.bits == wide_bits || (!is_average && !described.coefficients_are_said)) return std::nullopt;
     const double largest_input = std::ldexp(1.0, in.bits - 1);
     double largest = largest_input;
     std::string what = "one sample";
     if (!is_average) {
         const int terms = in.fraction_bits + described.coefficient_fraction_bits;
-        const bool is_recursive = family_of(described.stage) != Family::fir;
+        const bool is_recursive = family != Family::fir;
         const Word& target = is_recursive ? described.state : described.out.word;
         const int most = is_recursive
                              ? std::max(in.fraction_bits, target.fraction_bits) + described.coefficient_fraction_bits
@@ -170,6 +182,29 @@ std::optional<Error> division_that_cannot_be(const DescribedStage& described) {
     return std::nullopt;
 }
 
+/// Hogenauer (1981), equation 11: what the registers must hold so that their wrapping cancels out.
+std::optional<Error> registers_too_narrow(const DescribedStage& described) {
+    double gain = 0.0;
+    int order = 0;
+    const auto take = [&](const auto* cic, int powers_of_factor) {
+        if (cic == nullptr) return;
+        order = cic->order;
+        gain = std::pow(static_cast<double>(cic->factor), powers_of_factor) *
+               std::pow(static_cast<double>(cic->delay_samples), cic->order);
+    };
+    const auto* decimator = std::get_if<CicDecimator>(&described.stage.design);
+    const auto* interpolator = std::get_if<CicInterpolator>(&described.stage.design);
+    take(decimator, decimator == nullptr ? 0 : decimator->order);
+    take(interpolator, interpolator == nullptr ? 0 : interpolator->order - 1);
+    if (order == 0 || described.state.bits == wide_bits || described.in.word.bits == wide_bits) return std::nullopt;
+    const int needed = described.in.word.bits + static_cast<int>(std::ceil(std::log2(gain)));
+    if (described.state.bits >= needed) return std::nullopt;
+    return refuse("state_bits",
+                  "registers of " + text_of(described.state.bits) + " bits are too narrow for " +
+                      text_of(described.in.word.bits) + "-bit samples and a gain of " + number_text(gain),
+                  "state_bits = " + text_of(needed) + " would do");
+}
+
 std::optional<Error> number_that_cannot_be(const DescribedStage& described) {
     if (described.number != NumberKind::integer || !(described.in.is_float || described.out.is_float))
         return std::nullopt;
@@ -186,6 +221,7 @@ std::optional<Error> contradiction_in(const DescribedStage& stage) {
     if (stage.number == NumberKind::float32) return std::nullopt;
     if (auto error = coefficient_outside(stage)) return error;
     if (auto error = accumulator_too_narrow(stage)) return error;
+    if (auto error = registers_too_narrow(stage)) return error;
     return saving_without_loss(stage);
 }
 

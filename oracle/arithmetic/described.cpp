@@ -29,7 +29,9 @@ std::optional<int> exact_log2(double number) {
     return exponent - 1;
 }
 
-bool has_coefficients(Family family) { return family != Family::average; }
+bool has_coefficients(Family family) {
+    return family != Family::average && family != Family::median && family != Family::cic;
+}
 
 void describe_coefficients(DescribedStage& described) {
     const FilterStage& stage = described.stage;
@@ -60,9 +62,12 @@ void describe_state(DescribedStage& described) {
         described.state.fraction_bits =
             accumulator_fraction_bits_of(described, most_terms(described), described.out.word.fraction_bits);
     }
+    if (family_of(described.stage) == Family::cic)
+        described.state = {wide_bits, described.in.word.fraction_bits, Overflow::wrap};
     if (said.state_bits) described.state.bits = *said.state_bits;
     if (said.state_fraction_bits) described.state.fraction_bits = *said.state_fraction_bits;
-    described.state.overflow = said.state_overflow.value_or(said.output_overflow);
+    if (family_of(described.stage) != Family::cic) described.state.overflow = said.output_overflow;
+    if (said.state_overflow) described.state.overflow = *said.state_overflow;
 }
 
 DescribedStage described_stage(const FilterStage& stage, const Port& in, const Port& out) {

@@ -10,7 +10,13 @@ Family family_of(const FilterStage& stage) {
         const FilterStage& stage;
         Family operator()(const MovingAverage&) const { return Family::average; }
         Family operator()(const Fir&) const { return Family::fir; }
+        Family operator()(const FirDecimator&) const { return Family::fir; }
+        Family operator()(const FirInterpolator&) const { return Family::fir; }
         Family operator()(const Comb&) const { return Family::comb; }
+        Family operator()(const Recursion&) const { return Family::recursion; }
+        Family operator()(const Median&) const { return Family::median; }
+        Family operator()(const CicDecimator&) const { return Family::cic; }
+        Family operator()(const CicInterpolator&) const { return Family::cic; }
         Family operator()(const BiquadCascade&) const {
             return stage.kind == "one-pole" ? Family::one_pole : Family::sections;
         }
@@ -28,6 +34,12 @@ std::string_view text_of(Family family) {
             return "a one-pole";
         case Family::comb:
             return "a comb";
+        case Family::recursion:
+            return "an iir";
+        case Family::median:
+            return "a median";
+        case Family::cic:
+            return "a cic";
         case Family::sections:
             break;
     }
@@ -42,11 +54,14 @@ const std::vector<Structure>& structures_of(Family family) {
     switch (family) {
         case Family::fir:
         case Family::comb:
+        case Family::median:
+        case Family::cic:
             return direct;
         case Family::average:
             return average;
         case Family::one_pole:
             return one_pole;
+        case Family::recursion:
         case Family::sections:
             break;
     }

@@ -8,12 +8,12 @@
 
 namespace halflsb {
 
-enum class Family { fir, average, one_pole, comb, sections };
+enum class Family { fir, average, one_pole, comb, sections, recursion, median, cic };
 
 Family family_of(const FilterStage& stage);
 /// "a fir", "a moving average", "a cascade of sections"
 std::string_view text_of(Family family);
-/// The first one is that of a stage that says none.
+/// The first one is that of a stage that says none. A median and a CIC have one that needs no name.
 const std::vector<Structure>& structures_of(Family family);
 /// The structure that the stage says, or the first of its family where it says none of them.
 Structure structure_of(const FilterStage& stage);

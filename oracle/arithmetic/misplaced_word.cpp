@@ -16,13 +16,18 @@ bool is_one_of(std::string_view word, const std::vector<std::string_view>& words
 
 bool has_word(const FilterStage& stage, std::string_view word) {
     const Family family = family_of(stage);
-    const bool has_states = family != Family::fir && family != Family::average;
+    const bool has_products = family != Family::average && family != Family::median && family != Family::cic;
+    const bool has_states = has_products && family != Family::fir;
+    if (family == Family::cic && (word == "state_bits" || word == "state_overflow")) return true;
+    if (family == Family::median || family == Family::cic)
+        return is_one_of(word, {"number", "rounding", "output_overflow", "stage_format"});
     if (is_one_of(word, {"state_bits", "state_fraction_bits", "state_overflow", "output_rounding"})) return has_states;
-    if (word == "feedback_coefficients") return family == Family::sections || family == Family::comb;
+    if (word == "feedback_coefficients")
+        return family == Family::sections || family == Family::recursion || family == Family::comb;
     if (word == "division") return family == Family::average;
     if (word == "summation")
         return family == Family::fir || (family == Family::average && structure_of(stage) == Structure::fresh_sum);
-    if (word == "rounding_at") return family != Family::average && family != Family::one_pole;
+    if (word == "rounding_at") return has_products && family != Family::one_pole;
     if (is_one_of(word, {"coefficient_bits", "coefficient_rounding"}))
         return !is_by_shift(stage) && (family != Family::average || stage.arithmetic.division == Division::reciprocal);
     return true;
@@ -51,7 +56,7 @@ std::optional<Error> misplaced_word(const FilterStage& stage, const ParameterVal
     for (const Parameter& parameter : arithmetic_recipe().parameters) {
         const std::string_view word = parameter.name;
         if (!own.has(word)) continue;
-        if (word == "structure" && structure_of(stage) != stage.arithmetic.structure) {
+        if (word == "structure" && has_word(stage, word) && structure_of(stage) != stage.arithmetic.structure) {
             return refuse(word,
                           std::string(text_of(family)) + " has no structure \"" +
                               std::string(name_of(*stage.arithmetic.structure)) + "\"",

@@ -38,6 +38,8 @@ public:
         for (const auto* taps : {&forward_, &feedback_}) {
             for (const Tap& tap : *taps) is_plain_ = is_plain_ && tap.factor.is_plain();
         }
+        for (const Tap& tap : forward_) plain_forward_.push_back({tap.factor.times(), tap.delay});
+        for (const Tap& tap : feedback_) plain_feedback_.push_back({tap.factor.times(), tap.delay});
     }
 
     void reset() override {
@@ -50,9 +52,9 @@ public:
 
     void process(std::span<const std::int64_t> in, std::span<std::int64_t> out) override {
         if (is_plain_) {
-            run(in, out, [](const Tap& tap, std::int64_t word) { return static_cast<Sum>(tap.factor.times() * word); });
+            run(plain_forward_, plain_feedback_, in, out);
         } else {
-            run(in, out, [](const Tap& tap, std::int64_t word) { return tap.factor.product(word); });
+            run(forward_, feedback_, in, out);
         }
     }
 
@@ -88,7 +90,15 @@ private:
     struct Tap {
         Tap(const DelayedTerm& each, const SumPlan& sum)
             : factor(each.term, sum), delay(static_cast<std::ptrdiff_t>(each.delay)) {}
+        Sum product(std::int64_t word) const { return factor.product(word); }
         Factor<Sum> factor;
+        std::ptrdiff_t delay;
+    };
+
+    /// One that is a multiplication and nothing else.
+    struct PlainTap {
+        Sum product(std::int64_t word) const { return static_cast<Sum>(times * word); }
+        Sum times;
         std::ptrdiff_t delay;
     };
 
@@ -98,18 +108,19 @@ private:
         return depth;
     }
 
-    template <class Product>
-    void run(std::span<const std::int64_t> in, std::span<std::int64_t> out, Product product) {
+    template <class AnyTap>
+    void run(const std::vector<AnyTap>& forward, const std::vector<AnyTap>& feedback, std::span<const std::int64_t> in,
+             std::span<std::int64_t> out) {
         // Local, so that what is written to memory cannot be thought to change it.
         Accumulator<Sum> sum = sum_;
         for (std::size_t i = 0; i < in.size(); ++i) {
             inputs_.push(in[i]);
             sum.start();
             const std::int64_t* const newest = inputs_.newest();
-            for (const Tap& tap : forward_) sum.add(product(tap, newest[-tap.delay]));
+            for (const AnyTap& tap : forward) sum.add(tap.product(newest[-tap.delay]));
             if (has_state_) {
                 const std::int64_t* const next = states_.newest() + 1;
-                for (const Tap& tap : feedback_) sum.add(product(tap, next[-tap.delay]));
+                for (const AnyTap& tap : feedback) sum.add(tap.product(next[-tap.delay]));
                 const Sum state = state_.hold(sum.shortened());
                 states_.push(static_cast<std::int64_t>(state));
                 out[i] = static_cast<std::int64_t>(output_.hold(to_output_(state)));
@@ -121,6 +132,7 @@ private:
     }
 
     std::vector<Tap> forward_, feedback_;
+    std::vector<PlainTap> plain_forward_, plain_feedback_;  ///< the same, used where all are plain
     bool is_plain_ = true;
     Accumulator<Sum> sum_;
     bool has_state_;

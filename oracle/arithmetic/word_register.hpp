@@ -30,7 +30,8 @@ public:
     /// The number as the word holds it.
     Sum hold(Sum number) {
         // What lies between the ends and is no news passes by one comparison.
-        if (static_cast<Unsigned>(number) - static_cast<Unsigned>(low_) <= span_) return number;
+        if (static_cast<Unsigned>(number) - static_cast<Unsigned>(low_) <= span_) [[likely]]
+            return number;
         return settle(number);
     }
 
@@ -43,7 +44,8 @@ private:
 
     double value_of(Sum number) const { return std::ldexp(static_cast<double>(number), -word_.fraction_bits); }
 
-    Sum settle(Sum number) {
+    // Rare: kept out of the loops.
+    [[gnu::noinline]] Sum settle(Sum number) {
         lowest_ = std::min(lowest_, number);
         highest_ = std::max(highest_, number);
         low_ = std::max(lowest_, floor_);

@@ -4,6 +4,17 @@
 
 namespace halflsb {
 
+namespace {
+
+std::vector<double>* taps_of(FilterDesign& design) {
+    if (auto* fir = std::get_if<Fir>(&design)) return &fir->taps;
+    if (auto* decimator = std::get_if<FirDecimator>(&design)) return &decimator->taps;
+    if (auto* interpolator = std::get_if<FirInterpolator>(&design)) return &interpolator->taps;
+    return nullptr;
+}
+
+}  // namespace
+
 double rounded_coefficient(double coefficient, int fraction_bits, Rounding rounding) {
     const double scaled = std::ldexp(coefficient, fraction_bits);
     // From 2^52 on every double is whole: nothing to round, and nothing to lose by overflow.
@@ -23,8 +34,11 @@ FilterStage with_rounded_coefficients(const FilterStage& stage) {
     const auto feedback = [&](double& a) {
         a = added ? 0.0 - rounded_coefficient(-a, bits, rounding) : rounded_coefficient(a, bits, rounding);
     };
-    if (auto* fir = std::get_if<Fir>(&rounded.design)) {
-        for (double& tap : fir->taps) forward(tap);
+    if (std::vector<double>* taps = taps_of(rounded.design)) {
+        for (double& tap : *taps) forward(tap);
+    } else if (auto* recursion = std::get_if<Recursion>(&rounded.design)) {
+        for (double& b : recursion->b) forward(b);
+        for (std::size_t k = 1; k < recursion->a.size(); ++k) feedback(recursion->a[k]);
     } else if (auto* comb = std::get_if<Comb>(&rounded.design)) {
         forward(comb->direct);
         forward(comb->forward);

@@ -5,6 +5,7 @@
 #include <cstdlib>
 
 #include "oracle/arithmetic/described.hpp"
+#include "oracle/filters/rates.hpp"
 #include "oracle/judge/latency_evidence.hpp"
 #include "oracle/judge/response_verdict.hpp"
 
@@ -120,6 +121,15 @@ void check_discard(const Case& the_case, std::vector<Refusal>& refusals) {
 
 void check_response(const Plan& plan, const Case& the_case, const Rule& rule, std::vector<Refusal>& refusals) {
     if (plan.filter_is_unknown) return;
+    for (int channel = 1; channel <= plan.signal.channels; ++channel) {
+        if (!is_driven(the_case, channel) || is_linear(chain_of(plan, the_case, channel))) continue;
+        refusals.push_back({rule.position,
+                            "case \"" + the_case.name +
+                                "\" asks for the response of a filter with a median in it, which is not linear and "
+                                "has none",
+                            "leave the rule out; rules about error, latency and unchanged hold"});
+        return;
+    }
     const Spectrum spectrum = measured_spectrum(the_case);
     const std::string noise = "use noise or a chirp over that band";
     if (spectrum.tones.empty() && spectrum.bands.empty()) {
@@ -162,10 +172,27 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
     }
 }
 
+/// The rules compare sample n of the response with sample n of the reference.
+void check_rate(const Plan& plan, const Case& the_case, std::vector<Refusal>& refusals) {
+    for (int channel = 1; channel <= plan.signal.channels && !plan.filter_is_unknown; ++channel) {
+        const FilterChain chain = chain_of(plan, the_case, channel);
+        if (!changes_rate(chain)) continue;
+        const RateRatio ratio = rate_ratio(chain);
+        refusals.push_back({the_case.position,
+                            "the filter of case \"" + the_case.name + "\" changes the sample rate, " +
+                                std::to_string(ratio.up) + " out for " + std::to_string(ratio.down) +
+                                " in, and its rules compare sample with sample",
+                            "describe the filter up to where the rate changes, and let the board return that"});
+        return;
+    }
+}
+
 }  // namespace
 
 std::vector<Refusal> refusals(const Plan& plan, const Case& the_case) {
     std::vector<Refusal> found;
+    check_rate(plan, the_case, found);
+    if (!found.empty()) return found;
     check_discard(the_case, found);
     if (!found.empty()) return found;
     for (const Rule& rule : the_case.rules) {

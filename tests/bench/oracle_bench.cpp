@@ -12,6 +12,7 @@
 #include "oracle/measure/error.hpp"
 #include "oracle/measure/lag.hpp"
 #include "oracle/measure/response.hpp"
+#include "tests/bench/twin_jobs.hpp"
 
 using namespace halflsb;
 
@@ -70,6 +71,19 @@ int main(int count, char** arguments) {
     std::int64_t zeros = 0;
     const double flush_seconds = seconds_of([&] { zeros += flush_samples({slow}, 1.0, 0x1p-16).value_or(0); });
     std::printf("flush-1e6 %.9f\n", zeros > 0 ? flush_seconds : 0.0);
+
+    for (const TwinJob& job : twin_jobs()) {
+        const auto twin = job.make();
+        const auto codes = q15_codes(x);
+        std::vector<Code> returned(length);
+        const double seconds = seconds_of([&] {
+            twin->reset();
+            for_blocks(length, [&](std::size_t first, std::size_t n) {
+                twin->process(std::span(codes).subspan(first, n), std::span(returned).subspan(first, n));
+            });
+        });
+        std::printf("%s %.9f\n", job.name.c_str(), seconds);
+    }
     time_filter("biquads-4", BiquadCascade{{section, section, section, section}});
 
     // y is the last filter's output now: the same record the Python side makes for the measures.

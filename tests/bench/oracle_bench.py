@@ -110,6 +110,12 @@ def main():
         theirs = seconds_of(job)
         per_sample = 1e9 / length
         print(f"{name:<22}{ours[name] * per_sample:>11.2f} ns{theirs * per_sample:>11.2f} ns{theirs / ours[name]:>8.1f}  {whom}")
+    print(f"{'twin':<30}{'per sample':>14}{'of the reference':>20}")
+    for name in ours:
+        if not name.startswith("twin-"):
+            continue
+        reference = next(each for each in sorted(ours, key=len, reverse=True) if name.endswith(each) and each != name)
+        print(f"{name:<30}{ours[name] * 1e9 / length:>11.2f} ns{ours[name] / ours[reference]:>19.1f}x")
 
 
 main()
