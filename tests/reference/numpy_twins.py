@@ -110,8 +110,8 @@ def made_stage(kind, words, arithmetic, source, target):
         fraction_bits = words["coefficient_fraction_bits"]
     return Stage(
         kind, words, source, target, number, said("structure", STRUCTURES[kind][0]), rounding,
-        said("output_rounding", rounding), overflow, said("state_overflow", overflow), said("accumulator_bits", AS_MANY_AS_IT_TAKES),
-        said("accumulator_overflow", "wrap"), said("accumulator_fraction_bits"), said("rounding_at", "sum"),
+        said("output_rounding", rounding), overflow, said("state_overflow", overflow),
+        said("accumulator_bits", AS_MANY_AS_IT_TAKES), said("accumulator_overflow", "wrap"), said("accumulator_fraction_bits"), said("rounding_at", "sum"),
         said("fraction_saving", "off") == "on", fraction_bits, said("coefficient_rounding", "half-away"),
         said("feedback_coefficients", "added"), said("state_bits"), said("state_fraction_bits"), said("state_overflow"),
         said("division", "divide"), said("multiply_add", "separate") == "fused", said("summation", "newest-first"))  # fmt: skip
@@ -206,7 +206,7 @@ def plan_tables(path, root):
     return tables
 
 
-def chain_of_plan(path, root=None, other={}):
+def chain_of_plan(path, root=None, other=None):
     """The chain of a plan file. Files that it names lie under the root, the folder of the plan when left out. `other` are
     words of the arithmetic that take the place of those of the plan."""
     root = pathlib.Path(root or pathlib.Path(path).parent)
@@ -217,7 +217,7 @@ def chain_of_plan(path, root=None, other={}):
             if f"{name}_file" in words:
                 numbers = [float(text) for text in (root / words.pop(f"{name}_file")).read_text().split()]
                 words[name] = numbers if name == "taps" else [numbers[i : i + 5] for i in range(0, len(numbers), 5)]
-        stages.append((table["kind"], words, plan.get("arithmetic", {}) | table.get("arithmetic", {}) | other))
+        stages.append((table["kind"], words, plan.get("arithmetic", {}) | table.get("arithmetic", {}) | (other or {})))
     signal = plan["signal"]
     return make_chain(stages, signal["input"], signal["output"], signal.get("output_per_input", 1.0))
 

@@ -61,8 +61,8 @@ class LimitCycles(unittest.TestCase):
         """floor(0.5 / (1 - |a|)) LSB, ties away from zero (Jackson, MEMORY; exhaustive search agrees)."""
         for eighths in (4, 6, 7):
             a = eighths / 8
-            largest = max(abs(first_order(sign * a, "half-away", start, 80)[-1]) for start in range(-128, 128) for sign in (1, -1))
-            self.assertEqual(largest, int(0.5 / (1 - a)))
+            ends = [first_order(sign * a, "half-away", start, 80)[-1] for start in range(-128, 128) for sign in (1, -1)]
+            self.assertEqual(max(abs(end) for end in ends), int(0.5 / (1 - a)))
 
     def test_truncation_leaves_a_one_sided_cycle(self):
         """-(ceil(1 / (1 - a)) - 1) LSB for a > 0, none for a < 0; none at all toward zero."""

@@ -4,11 +4,11 @@ A case is {"input", "output", "output_per_input", "stages": [(kind, words, arith
 """
 import numpy as np
 from twin_arithmetic import float_arithmetic, integer_arithmetic
-from twin_filters import Draw, words_of  # noqa: F401
+from twin_filters import words_of
 from twin_words import FORMATS, Port
 
 WORD_FORMATS = [name for name in FORMATS if name != "f32"]
-INTEGER_ONLY = ("median", "cic-decimator", "cic-interpolator")
+INTEGER_ONLY = ("cic-decimator", "cic-interpolator")
 SAMPLES = 420
 
 
@@ -61,7 +61,10 @@ def stages_to(draw, kinds, source_name, output_name, per_input):
         floats = source.is_float or target.is_float or (kind not in INTEGER_ONLY and draw.chance(0.15))
         if floats and kind in INTEGER_ONLY:
             return None
-        said = float_arithmetic(draw, kind, words, target) if floats else integer_arithmetic(draw, kind, words, source, target)
+        if floats:
+            said = float_arithmetic(draw, kind, words, target)
+        else:
+            said = integer_arithmetic(draw, kind, words, source, target)
         if said is None:
             return None
         if not last and (target_name != "f32" or draw.chance(0.5)):

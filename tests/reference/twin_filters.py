@@ -112,9 +112,10 @@ def is_stable(a):
 
 def stays_sound(kind, words, f, rounding, added):
     """With stored coefficients it is stable and passes something."""
+    sign = -1 if added else 1
     for b, a in coefficients_of(kind, words):
-        stored = [float(rounded(Fraction(c) * 2**f, rounding)) * 2.0**-f for c in b]
-        back = [(-rounded(-Fraction(c) * 2**f, rounding) if added else rounded(Fraction(c) * 2**f, rounding)) * 2.0**-f for c in a]
+        stored = [rounded(Fraction(c) * 2**f, rounding) * 2.0**-f for c in b]
+        back = [sign * rounded(sign * Fraction(c) * 2**f, rounding) * 2.0**-f for c in a]
         poles = [0.0] * (words["delay_samples"] - 1) + back if kind == "comb" else back
         if not any(stored) or not is_stable(poles) or (kind == "comb" and (not stored[1] or abs(back[0]) >= 0.99)):
             return False

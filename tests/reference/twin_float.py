@@ -212,10 +212,27 @@ class OnePole:
         return [self.s]
 
 
+class Median:
+    """A NaN among the points gives one."""
+
+    def __init__(self, stage):
+        self.past = deque([F32(0)] * stage.words["points"], stage.words["points"])
+
+    def step(self, x):
+        self.past.appendleft(x)
+        if any(np.isnan(value) for value in self.past):
+            return [F32(np.nan)]
+        ordered = sorted(self.past)
+        middle = len(ordered) // 2
+        if len(ordered) % 2 == 1:
+            return [ordered[middle]]
+        return [(ordered[middle - 1] + ordered[middle]) * F32(0.5)]
+
+
 def to_words(y, port, rounding, overflow):
-    """A float32 as the number in whole output words."""
-    if np.isnan(y):
+    """A float32 as the number in whole output words; what has no number, a NaN or an infinity that wraps, gives 0."""
+    if np.isnan(y) or (np.isinf(y) and overflow == "wrap"):
         return 0
     if np.isinf(y):
-        return held(1 << 200 if y > 0 else -1 << 200, port.bits, overflow)
+        return held(1 << port.bits if y > 0 else -1 << port.bits, port.bits, overflow)
     return held(rounded(Fraction(float(y)) * Fraction(2) ** port.fraction, rounding), port.bits, overflow)

@@ -147,7 +147,7 @@ class Direct2:
     def __init__(self, stage, b, a, input_fraction=None):
         self.stage, stored = stage, Stored(stage)
         fraction = stage.input.fraction if input_fraction is None else input_fraction
-        self.f, self.x_bits, self.w_bits = stored.f, stored.f + fraction, stored.f + stage.state_fraction_bits
+        self.x_bits, self.w_bits = fraction, stored.f + stage.state_fraction_bits
         self.b, self.a = [stored.feed(c) for c in b], [stored.back(c) for c in a]
         length = max(len(b), len(a) + 1)
         self.w = deque([0] * length, length)
@@ -155,7 +155,7 @@ class Direct2:
         self.ahead = Adder(stage, [self.w_bits], stage.output.fraction, stage.output_rounding)
 
     def step(self, x):
-        terms = [(1, x << self.f, self.x_bits)]
+        terms = [(1, x, self.x_bits)]
         terms += [(sign, word * w, self.w_bits) for (word, sign), w in zip(self.a, self.w)]
         self.w.appendleft(self.stage.state(self.back.total(terms)))
         terms = [(sign, word * w, self.w_bits) for (word, sign), w in zip(self.b, self.w)]
@@ -244,7 +244,8 @@ class Median:
         self.past.appendleft(x)
         ordered = sorted(self.past)
         twice = ordered[(len(ordered) - 1) // 2] + ordered[len(ordered) // 2]
-        return [self.stage.out(shortened(twice, self.stage.input.fraction + 1, self.stage.output.fraction, self.stage.rounding))]
+        has, wanted = self.stage.input.fraction + 1, self.stage.output.fraction
+        return [self.stage.out(shortened(twice, has, wanted, self.stage.rounding))]
 
 
 class Cic:

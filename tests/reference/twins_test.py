@@ -9,6 +9,7 @@ import time
 
 import numpy_twins
 import twin_cases
+import twin_filters
 
 CASES_PER_KIND = 60
 SHOWN_FAILURES = 12
@@ -65,7 +66,7 @@ def main():
     program = sys.argv[1]
     seed = int(sys.argv[2]) if len(sys.argv) > 2 else time.time_ns() % 2**32
     print(f"seed {seed} (repeat with: twins_test.py PROGRAM {seed})")
-    draw = twin_cases.Draw(seed)
+    draw = twin_filters.Draw(seed)
     known = ask(program, "kinds\n")[0].split()
     kinds = [kind for kind in numpy_twins.STRUCTURES if kind in known]
     cases = [twin_cases.random_case(draw, kinds, kind) for kind in kinds for _ in range(CASES_PER_KIND)]
