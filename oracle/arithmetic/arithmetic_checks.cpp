@@ -5,6 +5,7 @@
 
 #include "oracle/arithmetic/family.hpp"
 #include "oracle/filters/coefficients.hpp"
+#include "oracle/filters/rates.hpp"
 #include "stimuli/number_text.hpp"
 
 namespace halflsb {
@@ -184,24 +185,16 @@ std::optional<Error> division_that_cannot_be(const DescribedStage& described) {
 
 /// Hogenauer (1981), equation 11: what the registers must hold so that their wrapping cancels out.
 std::optional<Error> registers_too_narrow(const DescribedStage& described) {
-    double gain = 0.0;
-    int order = 0;
-    const auto take = [&](const auto* cic, int powers_of_factor) {
-        if (cic == nullptr) return;
-        order = cic->order;
-        gain = std::pow(static_cast<double>(cic->factor), powers_of_factor) *
-               std::pow(static_cast<double>(cic->delay_samples), cic->order);
-    };
-    const auto* decimator = std::get_if<CicDecimator>(&described.stage.design);
-    const auto* interpolator = std::get_if<CicInterpolator>(&described.stage.design);
-    take(decimator, decimator == nullptr ? 0 : decimator->order);
-    take(interpolator, interpolator == nullptr ? 0 : interpolator->order - 1);
-    if (order == 0 || described.state.bits == wide_bits || described.in.word.bits == wide_bits) return std::nullopt;
-    const int needed = described.in.word.bits + static_cast<int>(std::ceil(std::log2(gain)));
+    int growth = -1;
+    if (const auto* decimator = std::get_if<CicDecimator>(&described.stage.design)) growth = growth_bits(*decimator);
+    if (const auto* interpolator = std::get_if<CicInterpolator>(&described.stage.design))
+        growth = growth_bits(*interpolator);
+    if (growth < 0 || described.state.bits == wide_bits || described.in.word.bits == wide_bits) return std::nullopt;
+    const int needed = described.in.word.bits + growth;
     if (described.state.bits >= needed) return std::nullopt;
     return refuse("state_bits",
                   "registers of " + text_of(described.state.bits) + " bits are too narrow for " +
-                      text_of(described.in.word.bits) + "-bit samples and a gain of " + number_text(gain),
+                      text_of(described.in.word.bits) + "-bit samples that grow by " + text_of(growth) + " bits",
                   "state_bits = " + text_of(needed) + " would do");
 }
 

@@ -135,7 +135,7 @@ private:
         const Word difference{wide_bits, std::max(in_.fraction_bits, stage_.state.fraction_bits)};
         SumTarget target = at_section("product", 0, Place::loop);
         target.fraction_bits = stage_.state.fraction_bits;
-        sums_.add_product(term(s.b0, difference), target, 1.0);
+        sums_.add_sum({term(s.b0, difference)}, target);
     }
 
     void of_leak(const BiquadSection& s) {
@@ -166,8 +166,10 @@ private:
     }
 
     Term feedback(double a, const Word& word) const {
-        Term product = term(-a, word);
+        const bool is_subtracted = stage_.feedback_coefficients == FeedbackCoefficients::subtracted;
+        Term product = term(is_subtracted ? a : -a, word);
         product.is_feedback = true;
+        product.is_subtracted = is_subtracted;
         return product;
     }
 

@@ -87,10 +87,13 @@ void SumPoints::add_products(const std::vector<Term>& terms, const SumTarget& ta
     const bool any = stage_.rounding_at == RoundingAt::product && !is_known();
     for (const Term& t : terms) {
         if (t.is_feedback != of_feedback || (!any && !stage_.coefficients_are_said)) continue;
-        const RoundedNumbers numbers =
-            any ? RoundedNumbers{unlimited, -unlimited, unlimited} : numbers_of({t}, t.fraction_bits, accumulator);
+        Term product = t;
+        product.is_subtracted = false;
+        const RoundedNumbers numbers = any ? RoundedNumbers{unlimited, -unlimited, unlimited}
+                                           : numbers_of({product}, t.fraction_bits, accumulator);
         if (numbers.parts <= 1.0) continue;
-        const RoundingError error = rounding_error(rounding_of(products), numbers).times(point.step);
+        const double step = t.is_subtracted ? -point.step : point.step;
+        const RoundingError error = rounding_error(rounding_of(products), numbers).times(step);
         ++point.count;
         point.error = point.error + error;
         point.parts = std::max(point.parts, numbers.parts);
@@ -109,7 +112,8 @@ RoundedNumbers SumPoints::numbers_of(const std::vector<Term>& terms, int accumul
     for (const Term& t : terms) {
         const int gained = accumulator - t.fraction_bits;
         common = std::min(common, gained < 0 ? 0 : trailing_zeros(t.stored) + gained);
-        const double scale = std::ldexp(static_cast<double>(t.stored), target_bits - t.fraction_bits);
+        const double stored = static_cast<double>(t.stored);
+        const double scale = std::ldexp(t.is_subtracted ? -stored : stored, target_bits - t.fraction_bits);
         const double lowest = -power_of_two(t.word.bits - 1), highest = power_of_two(t.word.bits - 1) - 1.0;
         low += std::min(lowest * scale, highest * scale);
         high += std::max(lowest * scale, highest * scale);

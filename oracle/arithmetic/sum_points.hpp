@@ -7,11 +7,12 @@ namespace halflsb {
 
 /// A product of a sum: stored coefficient times words.
 struct Term {
-    double coefficient = 1.0;  ///< as a value
-    std::int64_t stored = 1;   ///< 1 where nothing says how finely it is stored
-    int fraction_bits = 0;     ///< of the product
-    Word word = {};            ///< that is multiplied
-    bool is_feedback = false;  ///< of what the section returned before
+    double coefficient = 1.0;    ///< as a value
+    std::int64_t stored = 1;     ///< 1 where nothing says how finely it is stored
+    int fraction_bits = 0;       ///< of the product
+    Word word = {};              ///< that is multiplied
+    bool is_feedback = false;    ///< of what the section returned before
+    bool is_subtracted = false;  ///< after it was shortened, if it was
 };
 
 /// Where a sum goes: which words, which rounding, which way to the output.

@@ -2,6 +2,7 @@
 #include <algorithm>
 #include <cmath>
 
+#include "oracle/filters/coefficient_file.hpp"
 #include "oracle/filters/coefficients.hpp"
 #include "oracle/filters/filter_kind.hpp"
 
@@ -27,8 +28,15 @@ std::vector<FilterKind> written_kinds() {
                                   cic_decimator_kind(),
                                   cic_interpolator_kind(),
                                   fir_decimator_kind(),
-                                  fir_interpolator_kind()};
+                                  fir_interpolator_kind(),
+                                  windowed_sinc_kind(),
+                                  butterworth_kind(),
+                                  chebyshev_kind(),
+                                  equaliser_kind(),
+                                  weighting_kind(),
+                                  octave_band_kind()};
     for (FilterKind& kind : kinds) {
+        add_file_words(kind.recipe);
         if (kind.complaint != nullptr) kind.recipe.parameters.push_back(fraction_bits_parameter());
         kind.recipe.parameters.push_back(
             {.name = channels_name,

@@ -10,6 +10,7 @@
 #include "oracle/filters/fir_rates.hpp"
 #include "oracle/filters/median.hpp"
 #include "oracle/filters/moving_average.hpp"
+#include "oracle/filters/partitioned_fir.hpp"
 #include "oracle/filters/rates.hpp"
 #include "oracle/filters/recursion.hpp"
 #include "oracle/filters/stage_filter.hpp"
@@ -44,17 +45,24 @@ struct FilterOf<FirDecimator> : std::type_identity<FirDecimatorFilter> {};
 template <>
 struct FilterOf<FirInterpolator> : std::type_identity<FirInterpolatorFilter> {};
 
-template <class Design>
-std::unique_ptr<Filter> stage_filter(const Design& design, Initial initial) {
-    using Made = typename FilterOf<Design>::type;
-    if constexpr (std::is_same_v<Design, MovingAverage>) {
-        if (initial == Initial::growing) return std::make_unique<Made>(design, true);
-    }
+template <class Made, class Design>
+std::unique_ptr<Filter> begun(const Design& design, Initial initial) {
     auto filter = std::make_unique<Made>(design);
     if constexpr (std::is_base_of_v<StageFilter, Made>) {
         if (initial == Initial::first_sample) return std::make_unique<FirstSampleStart>(std::move(filter));
     }
     return filter;
+}
+
+template <class Design>
+std::unique_ptr<Filter> stage_filter(const Design& design, Initial initial) {
+    if constexpr (std::is_same_v<Design, MovingAverage>) {
+        if (initial == Initial::growing) return std::make_unique<MovingAverageFilter>(design, true);
+    }
+    if constexpr (std::is_same_v<Design, Fir>) {
+        if (design.taps.size() >= least_partitioned_taps) return begun<PartitionedFirFilter>(design, initial);
+    }
+    return begun<typename FilterOf<Design>::type>(design, initial);
 }
 
 // So few inputs at a time that no stage gets much more than piece_samples.

@@ -38,6 +38,12 @@ FilterKind cic_decimator_kind();
 FilterKind cic_interpolator_kind();
 FilterKind fir_decimator_kind();
 FilterKind fir_interpolator_kind();
+FilterKind windowed_sinc_kind();
+FilterKind butterworth_kind();
+FilterKind chebyshev_kind();
+FilterKind equaliser_kind();
+FilterKind weighting_kind();
+FilterKind octave_band_kind();
 
 Error refuse(std::string_view place, std::string problem, std::string remedy);
 /// The shortest text that reads back as the same number.

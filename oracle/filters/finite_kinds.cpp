@@ -85,7 +85,7 @@ FilterKind fir_kind() {
          {coefficients_parameter("taps", ParameterType::reals,
                                  "The taps, 1 .. 65536 of them, the one of the newest sample first."),
           coefficients_parameter("taps_file", ParameterType::file,
-                                 "Instead of taps: a file with one tap a line, the one of the newest sample first.")}},
+                                 "Instead of taps: a file of them, text, CSV, NPY or the firmware's own C source.")}},
         make_fir,
         complaint_about_taps};
 }

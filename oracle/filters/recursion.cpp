@@ -12,8 +12,9 @@ namespace {
 
 constexpr std::size_t room_samples = 1024;
 
-// What is fed back stops here, before it gets subnormal and slow; beyond notice in any format, and written so that a
-// NaN goes on.
+// A silent input lets the outputs decay into subnormal numbers, where a processor is a hundred times slower. Once all
+// that are fed back lie below this, beyond notice in any format, they are dropped: one alone would set the others off
+// again. Counted for each sample, so block bounds do not matter.
 constexpr double vanished = 1e-200;
 
 double sum_of_sizes_from(const std::vector<double>& numbers, std::size_t first) {
@@ -59,9 +60,10 @@ void RecursionFilter::preload(double value) {
     std::fill(line_in_.begin(), line_in_.begin() + past, Halves(value));
     std::fill(line_out_.begin(), line_out_.begin() + past, Output{Halves(value * gain_at_dc_), 0.0});
     place_ = past_;
+    quiet_ = 0;
 }
 
-double RecursionFilter::step(const Halves* newest_in, Output* next_out) const {
+double RecursionFilter::step(const Halves* newest_in, Output* next_out) {
     double sum = 0.0, rest = 0.0;
     const auto add = [&](const Halves& a, const Halves& b) {
         const double product = a.value * b.value;
@@ -78,11 +80,10 @@ double RecursionFilter::step(const Halves* newest_in, Output* next_out) const {
         rest += a.value * past_out->rest;
     }
     const double result = sum + rest;
-    if (std::fabs(result) < vanished) {
-        *next_out = Output{};
-    } else {
-        *next_out = Output{Halves(result), sum_error(sum, rest, result)};
-    }
+    *next_out = Output{Halves(result), sum_error(sum, rest, result)};
+    quiet_ = std::fabs(result) < vanished ? quiet_ + 1 : 0;
+    if (quiet_ >= minus_a_.size())
+        std::fill(next_out + 1 - static_cast<std::ptrdiff_t>(minus_a_.size()), next_out + 1, Output{});
     return result;
 }
 

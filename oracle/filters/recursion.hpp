@@ -35,13 +35,14 @@ private:
         double rest = 0.0;  ///< of the output, below its last bit
     };
 
-    double step(const Halves* newest_in, Output* next_out) const;
+    double step(const Halves* newest_in, Output* next_out);
 
     std::vector<Halves> b_, minus_a_;  ///< minus_a_ from a[1] on
     double gain_at_dc_;
     std::vector<Halves> line_in_;   ///< the past and what has come since the last move; the newest last
     std::vector<Output> line_out_;  ///< likewise
     std::size_t past_, place_ = 0;  ///< past_ samples are kept; place_: index in both lines of the next sample
+    std::size_t quiet_ = 0;         ///< outputs in a row that have decayed to nothing
 };
 
 /// How far the output of a plain double-precision recursion may lie from the true one, for inputs within -1 .. 1:

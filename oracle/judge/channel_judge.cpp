@@ -4,7 +4,7 @@
 #include <cmath>
 #include <cstdlib>
 
-#include "oracle/judge/units.hpp"
+#include "oracle/judge/latency_sigma.hpp"
 
 namespace halflsb {
 namespace {
@@ -15,6 +15,11 @@ const Rule* find_latency_rule(const Case& the_case) {
     const auto found = std::find_if(the_case.rules.begin(), the_case.rules.end(),
                                     [](const Rule& rule) { return std::holds_alternative<LatencyRule>(rule.kind); });
     return found == the_case.rules.end() ? nullptr : &*found;
+}
+
+double evidence_needed(const Plan& plan, const Case& the_case, int channel) {
+    const double sigma = latency_sigma(plan, the_case, channel);
+    return latency_evidence_ratio * sigma * sigma;
 }
 
 std::string samples_text(int count) {
@@ -36,8 +41,7 @@ ChannelJudge::ChannelJudge(const Plan& plan, const Case& the_case, int channel)
       window_(lag_window_of(the_case)),
       lag_(window_, expected_lag_, first_lag_sample(the_case, window_)),
       discrimination_(window_, first_lag_sample(the_case, window_)),
-      evidence_needed_(latency_evidence_ratio * latency_sigma(the_case, plan.signal) *
-                       latency_sigma(the_case, plan.signal)) {}
+      evidence_needed_(evidence_needed(plan, the_case, channel)) {}
 
 void ChannelJudge::add(std::span<const Code> sent, std::span<const Code> response) {
     const ReferenceBlock block = reference_.next(sent);
@@ -82,7 +86,8 @@ ChannelJudge::Latency ChannelJudge::latency_found() const {
     if (!std::isfinite(lags_->residual_at(measured))) return Latency::not_finite;
     if (measured == expected_lag_) return Latency::as_expected;
     const bool is_clear = lags_->residual_at(measured) * 100.0 <= lags_->residual_at(expected_lag_);
-    const bool meets_limits = second_->pass.has_error_rules() && second_->pass.error_rules_pass();
+    const bool meets_limits =
+        second_->pass.has_error_rules() && second_->pass.error_rules_pass(second_->reference.rails());
     return is_clear || meets_limits ? Latency::other : Latency::fits_nowhere;
 }
 
@@ -125,13 +130,13 @@ std::optional<RuleVerdict> ChannelJudge::verdict(const Rule& rule) const {
         if (&rule == latency_rule_) verdict = latency_verdict(rule);
     } else if (latency_found() == Latency::other) {
         // One fault, one failure: the latency has failed, the rest is judged where the response lies.
-        verdict = second_->pass.verdict(rule);
+        verdict = second_->pass.verdict(rule, second_->reference.rails());
         if (verdict) {
             const std::string note = "judged at the measured lag of " + samples_text(lags_->best_lag);
             verdict->reason = verdict->reason.empty() ? note : note + "; " + verdict->reason;
         }
     } else {
-        verdict = pass_.verdict(rule);
+        verdict = pass_.verdict(rule, reference_.rails());
     }
     if (verdict) verdict->channel = plan_.signal.channels == 1 ? 0 : channel_;
     return verdict;

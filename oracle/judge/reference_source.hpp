@@ -3,9 +3,11 @@
 
 #include <cstdint>
 #include <memory>
+#include <optional>
 #include <span>
 #include <vector>
 
+#include "oracle/arithmetic/rail_watch.hpp"
 #include "oracle/arithmetic/twin.hpp"
 #include "oracle/judge/plan.hpp"
 
@@ -19,6 +21,8 @@ struct ReferenceBlock {
     std::span<const double> declared;
     std::span<const double> design;  ///< empty when it was not asked for
     std::span<const Code> twin;      ///< output codes of the declared arithmetic; empty when it was not asked for
+    /// Not 0 where a rail may be reached, so that derived limits claim nothing; empty when it was not asked for.
+    std::span<const std::uint8_t> exempt;
 
     ReferenceBlock first(std::size_t count) const;
     /// Without the first `count`.
@@ -27,7 +31,7 @@ struct ReferenceBlock {
 
 /// What a judge wants beside the declared reference.
 struct WantedReferences {
-    bool design = false, twin = false;
+    bool design = false, twin = false, rails = false;
 };
 WantedReferences wanted_references(const Case& the_case, int channel);
 
@@ -37,6 +41,8 @@ public:
     ReferenceSource(const Plan& plan, const Case& the_case, int channel, WantedReferences wanted);
     /// `codes` are the channel's next ones; the block is good until the next call, and no longer than they are.
     ReferenceBlock next(std::span<const Code> codes);
+    /// Nothing unless the rails were asked for.
+    const RailWatch* rails() const { return rails_ ? &*rails_ : nullptr; }
 
 private:
     const Signal& signal_;
@@ -45,6 +51,8 @@ private:
     std::vector<double> values_, declared_, design_;
     std::unique_ptr<Twin> twin_;
     std::vector<Code> twin_codes_;
+    std::optional<RailWatch> rails_;
+    std::vector<std::uint8_t> exempt_;
 };
 
 }  // namespace halflsb

@@ -11,6 +11,7 @@ void WaitingReference::append(const ReferenceBlock& block) {
     append(declared_, block.declared);
     append(design_, block.design);
     append(twin_, block.twin);
+    append(exempt_, block.exempt);
 }
 
 void WaitingReference::append_silence(std::size_t count, const Signal& signal, WantedReferences wanted) {
@@ -19,10 +20,11 @@ void WaitingReference::append_silence(std::size_t count, const Signal& signal, W
     declared_.insert(declared_.end(), count, 0.0);
     if (wanted.design) design_.insert(design_.end(), count, 0.0);
     if (wanted.twin) twin_.insert(twin_.end(), count, zero_code(signal.output));
+    if (wanted.rails) exempt_.insert(exempt_.end(), count, std::uint8_t{0});
 }
 
 ReferenceBlock WaitingReference::first(std::size_t count) const {
-    return ReferenceBlock{0, codes_, stimulus_, declared_, design_, twin_}.first(count);
+    return ReferenceBlock{0, codes_, stimulus_, declared_, design_, twin_, exempt_}.first(count);
 }
 
 void WaitingReference::drop(std::size_t count) {
@@ -34,6 +36,7 @@ void WaitingReference::drop(std::size_t count) {
     drop(declared_);
     drop(design_);
     drop(twin_);
+    drop(exempt_);
 }
 
 }  // namespace halflsb

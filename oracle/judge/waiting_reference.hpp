@@ -19,6 +19,7 @@ public:
 
 private:
     std::vector<Code> codes_, twin_;
+    std::vector<std::uint8_t> exempt_;
     std::vector<double> stimulus_, declared_, design_;
 };
 

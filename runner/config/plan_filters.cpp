@@ -5,6 +5,8 @@
 #include <deque>
 
 #include "oracle/arithmetic/declared.hpp"
+#include "oracle/filters/rates.hpp"
+#include "runner/config/coefficient_files.hpp"
 #include "runner/config/plan_arithmetic.hpp"
 #include "runner/config/plan_words.hpp"
 
@@ -77,15 +79,18 @@ private:
             read_.is_unknown = true;
             return;
         }
+        std::optional<CoefficientFiles> files;
+        if (reader.is_clean()) files.emplace(context_, reader, *recipe, stage.values);
         read_arithmetic(context_, reader, "[filter.arithmetic]", common_.arithmetic, tables.own);
         reader.refuse_unknown_keys();
         if (!reader.is_clean()) return;
-        tables.values = stage.values;
         stage.arithmetic = tables.own.arithmetic;
+        if (files && !files->settle(stage.arithmetic, signal_, stage_count == 1)) return;
+        tables.values = stage.values;
         stage.depends_on_rate = is_in_time(*recipe, stage.values);
         if (signal_ == nullptr && stage.depends_on_rate) return;
         auto made = make_stage(recipe->name, stage.values,
-                               {signal_ == nullptr ? 1.0 : signal_->rate_hz, stage.arithmetic,
+                               {signal_ == nullptr ? 1.0 : stage_rate_hz(), stage.arithmetic,
                                 signal_ == nullptr ? most_channels : signal_->channels});
         if (made) made = checked_words(std::move(*made));
         if (made) {
@@ -106,6 +111,13 @@ private:
         if (context_.problems.count() != before) return;
         if (const auto problem = arithmetic_problem(read_.chain, *signal_))
             tables_[problem->stage].refuse(problem->error, common_);
+    }
+
+    /// Corners of a stage are meant at the rate that the stages before it leave.
+    double stage_rate_hz() const {
+        double rate_hz = signal_->rate_hz;
+        for (const FilterStage& before : read_.chain) rate_hz = output_rate_hz(before, rate_hz);
+        return rate_hz;
     }
 
     /// Words between the stages that count in another kind of value would clip or lose everything.
@@ -140,8 +152,10 @@ bool PlanFilters::depends_on_rate() const {
 const Outcome<FilterChain>& PlanFilters::at_rate(double rate_hz, const Signal& signal) const {
     if (const auto known = chains_.find(rate_hz); known != chains_.end()) return known->second;
     FilterChain made;
+    double stage_rate_hz = rate_hz;
     for (const Stage& stage : stages) {
-        auto at_rate = make_stage(stage.kind, stage.values, {rate_hz, stage.arithmetic, signal.channels});
+        auto at_rate = make_stage(stage.kind, stage.values, {stage_rate_hz, stage.arithmetic, signal.channels});
+        if (at_rate) stage_rate_hz = output_rate_hz(*at_rate, stage_rate_hz);
         if (!at_rate) return chains_.emplace(rate_hz, at_rate.error()).first->second;
         made.push_back(std::move(*at_rate));
     }

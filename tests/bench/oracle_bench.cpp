@@ -8,7 +8,8 @@
 #include <string>
 #include <vector>
 
-#include "oracle/filters/filter.hpp"
+#include "oracle/filters/fir.hpp"
+#include "oracle/filters/partitioned_fir.hpp"
 #include "oracle/measure/error.hpp"
 #include "oracle/measure/lag.hpp"
 #include "oracle/measure/response.hpp"
@@ -60,6 +61,23 @@ int main(int count, char** arguments) {
     for (const int points : {16, 1000}) time_filter("moving-average-" + std::to_string(points), MovingAverage{points});
     for (const std::size_t taps : {16u, 64u, 256u}) {
         time_filter("fir-" + std::to_string(taps), Fir{std::vector<double>(taps, 1.0 / static_cast<double>(taps))});
+    }
+    // Both forms of the same FIR: where the one becomes faster is where make_filter should change over.
+    for (const std::size_t taps : {512u, 1024u, 2048u, 4096u, 16384u, 65536u}) {
+        const Fir design{std::vector<double>(taps, 1.0 / static_cast<double>(taps))};
+        FirFilter direct(design);
+        PartitionedFirFilter partitioned(design);
+        const std::size_t few = std::min<std::size_t>(length, 200000);
+        for (const auto& [name, filter] :
+             {std::pair<const char*, Filter*>{"direct-fir-", &direct}, {"partitioned-fir-", &partitioned}}) {
+            const double seconds = seconds_of([&] {
+                filter->reset();
+                for_blocks(few, [&](std::size_t first, std::size_t n) {
+                    filter->process(std::span(x).subspan(first, n), std::span(y).subspan(first, n));
+                });
+            });
+            std::printf("%s%zu %.9f\n", name, taps, seconds * static_cast<double>(length) / static_cast<double>(few));
+        }
     }
     const BiquadSection section{0.0675, 0.1349, 0.0675, -1.143, 0.4128};
     time_filter("biquads-1", BiquadCascade{{section}});

@@ -5,35 +5,13 @@
 
 #include "tests/oracle/arithmetic/plain_arithmetic.hpp"
 #include "tests/oracle/arithmetic/random_description.hpp"
+#include "tests/oracle/arithmetic/stimulus_words.hpp"
 
 using namespace halflsb;
 using namespace halflsb::testing;
 using Catch::Matchers::WithinRel;
 
 namespace {
-
-std::int64_t top_of(const DescribedChain& chain) {
-    return (std::int64_t{1} << (chain.stages.front().in.word.bits - 1)) - 1;
-}
-
-/// Words that drive a filter hard: noise, steps between the ends, the signs of its reversed impulse response, small
-/// ones.
-std::vector<Code> hard_words(Random& random, const DescribedChain& chain, std::size_t length) {
-    const std::int64_t top = top_of(chain);
-    std::vector<Code> words(length);
-    const std::int64_t kind = random.whole(0, 4);
-    const std::int64_t run = random.whole(1, 60), level = random.whole(1, 20);
-    const auto response = impulse_response(exact_chain(chain).stages, length);
-    for (std::size_t n = 0; n < length; ++n) {
-        std::int64_t word = random.whole(-top - 1, top);
-        if (kind == 1) word = (static_cast<std::int64_t>(n) / run) % 2 == 0 ? top : -top - 1;
-        if (kind == 2) word = response[length - 1 - n] > 0.0 ? top : -top - 1;
-        if (kind == 3) word = random.whole(-level, level);
-        if (kind == 4) word = random.whole(0, 1) == 0 ? top : static_cast<std::int64_t>(n) % (top + 1);
-        words[n] = static_cast<Code>(word);
-    }
-    return words;
-}
 
 struct Extremes {
     double lowest = 0.0, highest = 0.0;

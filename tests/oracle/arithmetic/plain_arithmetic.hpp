@@ -37,6 +37,7 @@ inline Huge quotient(Huge a, Huge b, Rounding rounding) {
 struct Fixed {
     Huge number = 0;
     int bits = 0;
+    bool is_subtracted = false;  ///< in a sum, after it was shortened
 };
 
 inline Fixed shortened(Fixed from, int bits, Rounding rounding) {
@@ -52,7 +53,10 @@ inline Fixed sum_of(const DescribedStage& stage, const std::vector<Fixed>& terms
     const int bits = accumulator_fraction_bits_of(stage, most, target);
     Fixed sum{0, bits};
     if (saved != nullptr) sum.number = saved->number;
-    for (const Fixed& t : terms) sum.number += shortened(t, bits, stage.rounding).number;
+    for (const Fixed& t : terms) {
+        const Huge number = shortened(t, bits, stage.rounding).number;
+        sum.number += t.is_subtracted ? -number : number;
+    }
     const Fixed result = shortened(sum, target, rounding);
     if (saved != nullptr && bits > target) *saved = {sum.number - result.number * power(bits - target), bits};
     return result;
@@ -90,7 +94,7 @@ private:
     Fixed back(double a, Fixed word) const {
         if (s_.feedback_coefficients == FeedbackCoefficients::added) return times(-a, word);
         const Fixed product = times(a, word);
-        return {-product.number, product.bits};
+        return {product.number, product.bits, true};
     }
     int out_bits() const { return s_.out.word.fraction_bits; }
     int state_bits() const { return s_.state.fraction_bits; }

@@ -102,8 +102,19 @@ inline bool is_stable_as_stored(const FilterStage& stage) {
     return true;
 }
 
+/// Words that a signal can fill: narrow accumulators and states, saturating and wrapping.
+inline void random_narrow_words(Random& random, FilterStage& stage) {
+    StageArithmetic& said = stage.arithmetic;
+    const auto overflow = [&] { return one_of(random, {Overflow::saturate, Overflow::saturate, Overflow::wrap}); };
+    said.output_overflow = overflow();
+    if (chance(random, 50)) said.state_overflow = overflow();
+    said.accumulator_overflow = overflow();
+    if (chance(random, 60)) said.accumulator_bits = static_cast<int>(random.whole(14, 64));
+    if (said.state_bits && chance(random, 60)) said.state_bits = static_cast<int>(random.whole(12, 40));
+}
+
 /// Chains of one or two stages whose coefficients as stored are stable, between words of 8 to 32 bits.
-inline RandomChain random_chain(Random& random) {
+inline RandomChain random_chain(Random& random, bool is_narrow = false) {
     for (;;) {
         RandomChain made;
         made.in = *sample_format(one_of<std::string_view>(random, {"q7", "q15", "i8", "i16", "u12", "i24"}));
@@ -115,6 +126,7 @@ inline RandomChain random_chain(Random& random) {
         for (std::int64_t i = 0; i < count; ++i) {
             FilterStage stage = random_design(random);
             random_arithmetic(random, stage);
+            if (is_narrow) random_narrow_words(random, stage);
             if (i + 1 < count) stage.arithmetic.stage_format = made.out;
             is_stable = is_stable && is_stable_as_stored(stage);
             made.stages.push_back(std::move(stage));
@@ -126,6 +138,8 @@ inline RandomChain random_chain(Random& random) {
         return made;
     }
 }
+
+inline RandomChain random_narrow_chain(Random& random) { return random_chain(random, true); }
 
 /// Values of the words of the first stage.
 inline std::vector<double> values_of_words(const DescribedChain& chain, const std::vector<Code>& words) {
@@ -145,6 +159,8 @@ inline std::string text_of(const RandomChain& chain) {
                 std::string(name_of(s.output_rounding)) + " f " + std::to_string(s.coefficient_fraction_bits) +
                 " state " + std::to_string(s.state.fraction_bits) + " acc " +
                 std::to_string(s.accumulator_fraction_bits.value_or(-1)) + "/" + std::to_string(s.accumulator_bits) +
+                std::string(name_of(s.accumulator_overflow)) + " out " + std::string(name_of(s.out.word.overflow)) +
+                " state " + std::string(name_of(s.state.overflow)) + std::to_string(s.state.bits) +
                 (s.fraction_saving ? " saving" : "");
     }
     return text;

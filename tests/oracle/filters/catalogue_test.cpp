@@ -26,9 +26,26 @@ TEST_CASE("catalogue: each kind and parameter has its words", "[filters]") {
             CHECK(parameter.maximum < no_limit);
         }
     }
-    CHECK(kinds == std::vector<std::string_view>{"moving-average", "fir", "biquad-cascade", "iir", "one-pole",
-                                                 "dc-blocker", "notch", "comb", "median", "cic-decimator",
-                                                 "cic-interpolator", "fir-decimator", "fir-interpolator", "unknown"});
+    CHECK(kinds == std::vector<std::string_view>{"moving-average",
+                                                 "fir",
+                                                 "biquad-cascade",
+                                                 "iir",
+                                                 "one-pole",
+                                                 "dc-blocker",
+                                                 "notch",
+                                                 "comb",
+                                                 "median",
+                                                 "cic-decimator",
+                                                 "cic-interpolator",
+                                                 "fir-decimator",
+                                                 "fir-interpolator",
+                                                 "windowed-sinc",
+                                                 "butterworth",
+                                                 "chebyshev",
+                                                 "audio-eq",
+                                                 "weighting",
+                                                 "octave-band",
+                                                 "unknown"});
     const Parameter* points = find_parameter(*find_recipe(filter_recipes(), "moving-average"), "points");
     CHECK((points->required && points->minimum == 1.0 && points->maximum == 65536.0 && points->unit == "samples"));
     const Parameter* bits = find_parameter(*find_recipe(filter_recipes(), "fir"), "coefficient_fraction_bits");
@@ -181,5 +198,6 @@ TEST_CASE("catalogue: an unknown kind is refused with the known ones", "[filters
     CHECK(refusal("wavelet", {}) ==
           "kind: \"wavelet\" is no filter kind\n  known kinds: moving-average, fir, biquad-cascade, iir, one-pole, "
           "dc-blocker, notch, comb, median, cic-decimator, cic-interpolator, fir-decimator, fir-interpolator, "
+          "windowed-sinc, butterworth, chebyshev, audio-eq, weighting, octave-band, "
           "unknown");
 }
