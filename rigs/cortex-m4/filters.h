@@ -1,5 +1,5 @@
 /* The filters of the CW-7, as its greeting lists them, and what an image offers: these, or those of another file that
- * defines cw7_offer (wide_filters.c). An image links exactly one. */
+ * defines cw7_offer (wide_filters.c, exact_filters.c). An image links exactly one. */
 #ifndef CW7_FILTERS_H
 #define CW7_FILTERS_H
 
@@ -19,7 +19,9 @@ struct cw7_offer {
     const struct halflsb_filter* filters;
     uint8_t count; /* up to CW7_MOST_FILTERS */
 };
+#ifndef CW7_MOST_FILTERS
 #define CW7_MOST_FILTERS 6
+#endif
 extern const struct cw7_offer cw7_offer;
 
 #endif

@@ -173,6 +173,8 @@ std::string what_it_is(const FilterParts& filter) {
             return "1/2 x[n] + 1/4 x[n-24] + 1/4 y[n-24], halves upward, saturates";
         case FilterKind::channels:
             return filter.channels_alike ? "load-cell on each channel" : "load-cell on channel 1, settle on channel 2";
+        case FilterKind::decision:
+            break;  // each says it itself
     }
     return "";
 }

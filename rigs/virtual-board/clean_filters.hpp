@@ -27,6 +27,7 @@ enum class FilterKind {
     dc_blocker,
     comb,
     channels,  ///< several, each with a filter of its own
+    decision,  ///< of clean_decisions.hpp
 };
 
 /// How the firmware came by its coefficients.

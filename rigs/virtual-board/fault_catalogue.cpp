@@ -243,10 +243,12 @@ std::string add_fault(std::string_view text, const std::vector<FilterParts>& cho
 
 std::string filter_list(const std::vector<FilterParts>& filters) {
     std::string list;
+    std::size_t width = 0;
+    for (const FilterParts& filter : filters) width = std::max(width, filter.name.size() + 2);
     for (const FilterParts& filter : filters) {
         std::string name = filter.name, format = text_of(filter.format);
         if (filter.channels.size() > 1) format += ", " + std::to_string(filter.channels.size()) + " channels";
-        name.resize(std::max<std::size_t>(name.size() + 2, 20), ' ');
+        name.resize(width, ' ');
         format.resize(std::max<std::size_t>(format.size() + 2, 22), ' ');
         list += name + format + filter.what + "\n";
     }

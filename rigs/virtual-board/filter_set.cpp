@@ -1,6 +1,7 @@
 #include "rigs/virtual-board/filter_set.hpp"
 
 #include <algorithm>
+#include <iterator>
 #include <utility>
 
 namespace halflsb::board {
@@ -84,7 +85,13 @@ bool OfferedFilter::load(std::uint8_t table, std::uint16_t offset, const std::in
 }
 
 std::vector<FilterParts> choose_filters(std::string_view choice, std::vector<FilterParts> all, std::string& problem) {
-    if (choice == "all") return all;
+    const auto in_set = [&](bool decisions) {
+        std::vector<FilterParts> set;
+        std::copy_if(all.begin(), all.end(), std::back_inserter(set),
+                     [&](const FilterParts& f) { return (f.kind == FilterKind::decision) == decisions; });
+        return set;
+    };
+    if (choice == "all" || choice == "decisions") return in_set(choice == "decisions");
     if (choice == "cw-7") choice = checkweigher;
     std::vector<FilterParts> chosen;
     while (true) {
@@ -92,7 +99,7 @@ std::vector<FilterParts> choose_filters(std::string_view choice, std::vector<Fil
         const std::string_view name = choice.substr(0, comma);
         const auto found = std::find_if(all.begin(), all.end(), [&](const auto& f) { return f.name == name; });
         if (found == all.end()) {
-            std::vector<std::string_view> known = {"all", "cw-7"};
+            std::vector<std::string_view> known = {"all", "cw-7", "decisions"};
             for (const FilterParts& filter : all) known.push_back(filter.name);
             problem = "no filter is called \"" + std::string(name) + "\"; the nearest is \"" +
                       std::string(nearest(name, known)) + "\"";

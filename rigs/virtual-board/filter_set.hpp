@@ -27,7 +27,8 @@ private:
     Format out_format_;
 };
 
-/// `choice`: "all", "cw-7", or names with commas between. An empty list: no such filter, and `problem` says so.
+/// `choice`: "all" (without the decisions), "cw-7", "decisions", or names with commas between. An empty list: no such
+/// filter, and `problem` says so.
 std::vector<FilterParts> choose_filters(std::string_view choice, std::vector<FilterParts> all, std::string& problem);
 
 }  // namespace halflsb::board

@@ -4,6 +4,7 @@
 #include <csignal>
 #include <iostream>
 
+#include "rigs/virtual-board/clean_decisions.hpp"
 #include "rigs/virtual-board/serve.hpp"
 
 namespace {
@@ -29,7 +30,7 @@ int main(int argument_count, char** arguments) {
 
     // Names are looked at with right tables; then the tables are made with their faults.
     AverageSetting average;
-    const std::vector<FilterParts> known = choose_filters(options.filter_set, all_filters({}, average), problem);
+    const std::vector<FilterParts> known = choose_filters(options.filter_set, every_filter({}, average), problem);
     if (known.empty()) return complain(problem, bad_command_line);
     if (options.list_filters) {
         std::cout << filter_list(known);
@@ -44,7 +45,7 @@ int main(int argument_count, char** arguments) {
         problem = add_fault(fault, known, faults);
         if (!problem.empty()) return complain(problem, bad_command_line);
     }
-    std::vector<FilterParts> chosen = choose_filters(options.filter_set, all_filters(faults.tables, average), problem);
+    std::vector<FilterParts> chosen = choose_filters(options.filter_set, every_filter(faults.tables, average), problem);
     if (chosen.size() > most_filters)
         return complain("at most " + std::to_string(most_filters) + " filters", bad_command_line);
 

@@ -9,7 +9,8 @@ enum { block_samples = 100 };
 int main(int argc, char** argv) {
     for (int i = 0; argc == 2 && i < cw7_offer.count; i++) {
         const struct halflsb_filter* filter = &cw7_offer.filters[i];
-        const size_t word = filter->input == HALFLSB_Q31 || filter->input == HALFLSB_I24 ? 4 : 2;
+        const size_t word =
+            filter->input == HALFLSB_Q31 || filter->input == HALFLSB_I24 || filter->input == HALFLSB_F32 ? 4 : 2;
         const size_t instant = word * filter->channels_in;
         int32_t in[2 * block_samples], out[2 * block_samples]; /* two channels of the wider word */
         size_t count;

@@ -59,6 +59,13 @@ static const double quick_smoothing_design[24] = {
     0.000138652638,
     -0.00010127226,
     -0.000209118589};
+static const double infeed_design[6] = {
+    0.9,
+    0.9,
+    0.8,
+    -0.9,
+    -0.9,
+    -0.8};
 static const double mains_notch_design[5] = {
     0.974482283357,
     -1.88255520951,

@@ -47,6 +47,12 @@ def quick_smoothing_taps():
     return taps / numpy.sum(taps)
 
 
+def infeed_taps():
+    """Tells an item that comes in: the newest three samples against the three before them. Taps that sum to more than 2 in
+    magnitude are what an accumulator of 32 bits cannot bear at full scale."""
+    return [0.9, 0.9, 0.8, -0.9, -0.9, -0.8]
+
+
 def notch_sections():
     """50 Hz at 1200 Hz, quality 5: the -3 dB band is 10 Hz wide."""
     b, a = signal.iirnotch(NOTCH_HZ, NOTCH_Q, fs=SAMPLE_RATE_HZ)
@@ -127,6 +133,7 @@ def all_files():
     files = {}
     files |= taps_files("smoothing", "31-tap linear-phase low-pass, corner 120 Hz at 1200 Hz", smoothing_taps())
     files |= taps_files("quick-smoothing", "24-tap low-pass whose taps are not symmetric", quick_smoothing_taps())
+    files |= taps_files("infeed", "6-tap difference of two means, gain 5.2 at most", infeed_taps())
     files |= sections_files("mains-notch", "50 Hz notch at 1200 Hz, quality 5", notch_sections(), ["q15"])
     files |= sections_files(
         "settle", "Butterworth low-pass, order 4, corner 0.02 of the sample rate", settle_sections(), ["q15", "q31", "f32"]
