@@ -36,7 +36,8 @@ std::optional<std::string> ParameterValues::text(const Recipe& recipe, std::stri
         return std::nullopt;
     }
     const Parameter* parameter = find_parameter(recipe, name);
-    if (parameter == nullptr || parameter->required || parameter->optional_choice || parameter->choices.empty()) {
+    if (parameter == nullptr || parameter->type != ParameterType::choice || parameter->required ||
+        parameter->optional_choice || parameter->choices.empty()) {
         return std::nullopt;
     }
     return std::string(parameter->choices.front());

@@ -40,10 +40,11 @@ struct Parameter {
     double maximum = no_limit;
     bool above_minimum = false;  ///< the minimum itself is not taken: a level of 0 would be silence
     bool required = false;
-    std::optional<double> default_value = {};    ///< of a number that may be left out
-    std::vector<std::string_view> choices = {};  ///< of a choice, the first is the default unless required
-    std::string_view help = {};                  ///< one sentence
-    bool optional_choice = false;                ///< a choice without a default: left out, it says nothing
+    std::optional<double> default_value = {};  ///< of a number that may be left out
+    /// Of a choice, the first is the default unless required; of a real number, words that may stand in its place.
+    std::vector<std::string_view> choices = {};
+    std::string_view help = {};    ///< one sentence
+    bool optional_choice = false;  ///< a choice without a default: left out, it says nothing
 };
 
 /// A stimulus shape, filter kind or rule kind with its parameters, in the order docs show them.

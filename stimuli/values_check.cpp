@@ -104,7 +104,9 @@ std::optional<Error> numbers_misfit(const Parameter& parameter, const std::vecto
 }
 
 std::optional<Error> value_misfit(const Parameter& parameter, const ParameterValue& value) {
-    if (!type_fits(parameter.type, value)) {
+    const bool is_word = parameter.type == ParameterType::real && !parameter.choices.empty() &&
+                         std::holds_alternative<std::string>(value);
+    if (!is_word && !type_fits(parameter.type, value)) {
         return refused(parameter.name, "needs " + std::string(type_text(parameter.type)), "");
     }
     if (const auto* whole = std::get_if<std::int64_t>(&value)) {
@@ -122,7 +124,8 @@ std::optional<Error> value_misfit(const Parameter& parameter, const ParameterVal
     if (!std::holds_alternative<std::string>(value)) return std::nullopt;
     const auto& text = *std::get_if<std::string>(&value);
     const auto& choices = parameter.choices;
-    if (parameter.type == ParameterType::choice && std::find(choices.begin(), choices.end(), text) == choices.end()) {
+    if ((parameter.type == ParameterType::choice || is_word) &&
+        std::find(choices.begin(), choices.end(), text) == choices.end()) {
         return refused(parameter.name, "\"" + text + "\" is not a choice", "choices: " + listed(choices));
     }
     return std::nullopt;

@@ -24,6 +24,16 @@ BiquadFilter::Section::Section(const BiquadSection& s)
     feed_value = g * difference_of_product(numerator, s.b0, denominator);  // = c1 + g c2, without its cancellation
     value_gain = g * denominator;
     change_gain = g * s.a2;
+    gain_at_dc = sum_of_three(s.b0, s.b1, s.b2) / sum_of_three(1.0, s.a1, s.a2);
+}
+
+// At rest under a constant v = d + g v, and x1 = x2 = x.
+double BiquadFilter::Section::preload(double x) {
+    const double y = gain_at_dc * x;
+    x1 = x2 = x;
+    v = y - direct * x;
+    d = v - g * v;
+    return y;
 }
 
 inline double BiquadFilter::Section::step(double x) {
@@ -60,6 +70,11 @@ BiquadFilter::BiquadFilter(const BiquadCascade& design) : until_check_(check_eve
 void BiquadFilter::reset() {
     for (Section& section : sections_) section.reset();
     until_check_ = check_every_samples;
+}
+
+void BiquadFilter::preload(double value) {
+    reset();
+    for (Section& section : sections_) value = section.preload(value);
 }
 
 void BiquadFilter::process(std::span<const double> in, std::span<double> out) {

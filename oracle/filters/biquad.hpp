@@ -22,14 +22,15 @@
 #include <utility>
 #include <vector>
 
-#include "oracle/filters/filter.hpp"
+#include "oracle/filters/stage_filter.hpp"
 
 namespace halflsb {
 
-class BiquadFilter final : public Filter {
+class BiquadFilter final : public StageFilter {
 public:
     explicit BiquadFilter(const BiquadCascade& design);
     void reset() override;
+    void preload(double value) override;
     void process(std::span<const double> in, std::span<double> out) override;
 
 private:
@@ -37,11 +38,13 @@ private:
         explicit Section(const BiquadSection& design);
         double step(double x);
         void reset() { x1 = x2 = v = d = 0.0; }
+        double preload(double x);
         void drop_vanished();
 
         double g;  ///< 1 or -1
         double direct, feed_value, feed_change, value_gain,
-            change_gain;  ///< b0, c1 + g c2, c2, (1 + g a1 + a2) g, g a2
+            change_gain;    ///< b0, c1 + g c2, c2, (1 + g a1 + a2) g, g a2
+        double gain_at_dc;  ///< B(1) / A(1)
         double x1 = 0.0, x2 = 0.0, v = 0.0, d = 0.0;
     };
 

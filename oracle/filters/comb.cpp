@@ -19,9 +19,12 @@ CombFilter::CombFilter(const Comb& design)
       past_in_(static_cast<std::size_t>(design.delay_samples), 0.0),
       past_out_(static_cast<std::size_t>(design.delay_samples), 0.0) {}
 
-void CombFilter::reset() {
-    std::fill(past_in_.begin(), past_in_.end(), 0.0);
-    std::fill(past_out_.begin(), past_out_.end(), 0.0);
+void CombFilter::reset() { preload(0.0); }
+
+void CombFilter::preload(double value) {
+    std::fill(past_in_.begin(), past_in_.end(), value);
+    const double output = value * (design_.direct + design_.forward) / (1.0 + design_.feedback);
+    std::fill(past_out_.begin(), past_out_.end(), or_nothing(output));
     place_ = 0;
 }
 

@@ -10,14 +10,15 @@
 
 #include <vector>
 
-#include "oracle/filters/filter.hpp"
+#include "oracle/filters/stage_filter.hpp"
 
 namespace halflsb {
 
-class CombFilter final : public Filter {
+class CombFilter final : public StageFilter {
 public:
     explicit CombFilter(const Comb& design);
     void reset() override;
+    void preload(double value) override;
     void process(std::span<const double> in, std::span<double> out) override;
 
 private:

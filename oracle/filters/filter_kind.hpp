@@ -24,8 +24,7 @@ struct FilterKind {
     Complaint complaint = nullptr;  ///< asked again after rounding; none: the kind has no coefficients
 };
 
-// The kinds, in finite_kinds.cpp, section_kinds.cpp, corner_kinds.cpp and comb_kind.cpp; those that compute a design in
-// windowed_sinc_kind.cpp, recursive_kinds.cpp, equaliser_kind.cpp and acoustic_kinds.cpp.
+// The kinds, in the *_kinds.cpp and *_kind.cpp of this folder.
 FilterKind moving_average_kind();
 FilterKind fir_kind();
 FilterKind biquad_cascade_kind();
@@ -33,6 +32,12 @@ FilterKind one_pole_kind();
 FilterKind dc_blocker_kind();
 FilterKind notch_kind();
 FilterKind comb_kind();
+FilterKind iir_kind();
+FilterKind median_kind();
+FilterKind cic_decimator_kind();
+FilterKind cic_interpolator_kind();
+FilterKind fir_decimator_kind();
+FilterKind fir_interpolator_kind();
 FilterKind windowed_sinc_kind();
 FilterKind butterworth_kind();
 FilterKind chebyshev_kind();
@@ -53,6 +58,10 @@ Outcome<std::string> one_of(const ParameterValues& values, std::initializer_list
 std::optional<Error> unusable_number(std::string_view place, double number);
 /// A frequency must lie below half the sample rate.
 std::optional<Error> beyond_nyquist(std::string_view place, double frequency_hz, double rate_hz);
+/// Those of taps or taps_file, of which one is given: 1 .. `most` usable numbers, not all 0.
+Outcome<std::vector<double>> taps_from(const ParameterValues& values, std::size_t most);
+/// Of a stage with taps, whether it changes the rate or not.
+std::optional<std::string> complaint_about_taps(const FilterStage& stage);
 /// The first section that is unstable or passes nothing.
 std::optional<std::string> complaint_about_sections(const FilterStage& stage);
 

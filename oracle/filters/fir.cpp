@@ -49,9 +49,11 @@ FirFilter::FirFilter(const Fir& design)
     reset();
 }
 
-void FirFilter::reset() {
+void FirFilter::reset() { preload(0.0); }
+
+void FirFilter::preload(double value) {
     end_ = taps_.size() - 1;
-    std::fill(line_.begin(), line_.begin() + static_cast<std::ptrdiff_t>(end_), 0.0);
+    std::fill(line_.begin(), line_.begin() + static_cast<std::ptrdiff_t>(end_), value);
 }
 
 void FirFilter::process(std::span<const double> in, std::span<double> out) {

@@ -7,14 +7,15 @@
 
 #include <vector>
 
-#include "oracle/filters/filter.hpp"
+#include "oracle/filters/stage_filter.hpp"
 
 namespace halflsb {
 
-class FirFilter final : public Filter {
+class FirFilter final : public StageFilter {
 public:
     explicit FirFilter(const Fir& design);
     void reset() override;
+    void preload(double value) override;
     void process(std::span<const double> in, std::span<double> out) override;
 
 private:

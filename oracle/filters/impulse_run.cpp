@@ -3,6 +3,8 @@
 #include <algorithm>
 #include <cmath>
 
+#include "oracle/filters/rates.hpp"
+
 namespace halflsb {
 
 namespace {
@@ -28,42 +30,45 @@ double sum_of_sizes(std::span<const double> piece) {
     return sum;
 }
 
-ImpulseRun::ImpulseRun(const FilterChain& chain) : source_{1.0} {
-    const auto add = [this](FilterDesign design, const Memory& memory) {
-        parts_.push_back({make_filter({FilterStage{std::move(design), std::nullopt}}), memory, PastSum(memory.samples),
+ImpulseRun::ImpulseRun(const FilterChain& chain, std::size_t phase) : source_(phase + 1, 0.0) {
+    source_.back() = 1.0;
+    const auto add = [this](const FilterDesign& design, const Memory& memory) {
+        parts_.push_back({make_filter({FilterStage{design, std::nullopt}}), memory, PastSum(memory.samples),
                           PastSum(memory.samples)});
     };
-    const std::ptrdiff_t first = longest_fir(chain);
+    const std::ptrdiff_t first = changes_rate(chain) ? -1 : longest_fir(chain);
     for (std::size_t i = 0; i < chain.size(); ++i) {
         const FilterDesign& design = chain[i].design;
         if (static_cast<std::ptrdiff_t>(i) == first) {
             source_ = std::get<Fir>(design).taps;
         } else if (const auto* cascade = std::get_if<BiquadCascade>(&design)) {
             for (const BiquadSection& section : cascade->sections) add(BiquadCascade{{section}}, memory_of(section));
-        } else if (const auto* average = std::get_if<MovingAverage>(&design)) {
-            add(design, memory_of(*average));
-        } else if (const auto* fir = std::get_if<Fir>(&design)) {
-            add(design, memory_of(*fir));
-        } else if (const auto* comb = std::get_if<Comb>(&design)) {
-            add(design, memory_of(*comb));
+        } else {
+            std::visit(
+                [&](const auto& kind) {
+                    if constexpr (requires { memory_of(kind); }) add(design, memory_of(kind));
+                },
+                design);
         }
     }
     source_rest_ = sum_of_sizes(source_);
 }
 
 std::span<const double> ImpulseRun::next() {
-    const std::size_t count = std::min(piece_.size(), source_.size() - source_at_);
+    pieces_[0].assign(piece_samples, 0.0);
+    const std::size_t count = std::min(piece_samples, source_.size() - source_at_);
     const auto from = source_.begin() + static_cast<std::ptrdiff_t>(source_at_);
-    std::copy_n(from, count, piece_.begin());
-    std::fill(piece_.begin() + static_cast<std::ptrdiff_t>(count), piece_.end(), 0.0);
+    std::copy_n(from, count, pieces_[0].begin());
     source_at_ += count;
-    source_rest_ = count < piece_.size() ? 0.0 : sum_of_sizes(std::span(source_).subspan(source_at_));
+    source_rest_ = count < piece_samples ? 0.0 : sum_of_sizes(std::span(source_).subspan(source_at_));
     for (Part& part : parts_) {
-        part.past_in.add(piece_);
-        part.filter->process(piece_, piece_);
-        part.past_out.add(piece_);
+        part.past_in.add(pieces_[0]);
+        pieces_[1].resize(part.filter->outputs_for(pieces_[0].size()));
+        part.filter->process(pieces_[0], pieces_[1]);
+        part.past_out.add(pieces_[1]);
+        std::swap(pieces_[0], pieces_[1]);
     }
-    return piece_;
+    return pieces_[0];
 }
 
 double ImpulseRun::rest() const {

@@ -3,7 +3,9 @@
 #include <algorithm>
 #include <cmath>
 
+#include "oracle/filters/cic.hpp"
 #include "oracle/filters/exact_sums.hpp"
+#include "oracle/filters/recursion.hpp"
 
 namespace halflsb {
 
@@ -56,17 +58,98 @@ Memory memory_of(const Comb& design) {
             series * feedback, static_cast<std::size_t>(design.delay_samples)};
 }
 
+// u[i] = -sum over k >= i of a[k] g[n - (k - i)] is what an output of 1 that is i samples old still returns. Once the
+// last outputs of each such run, taken together, are at most half of that 1, no state can do more: all that comes later
+// is a geometric series. g is run on until little is left of it.
+Memory memory_of(const Recursion& design) {
+    const std::size_t order = design.a.size() - 1;
+    double inputs = 0.0, past_inputs = 0.0, outputs = 0.0;
+    for (const double b : design.b) inputs += std::fabs(b);
+    past_inputs = inputs - std::fabs(design.b.front());
+    for (std::size_t k = 1; k <= order; ++k) outputs += std::fabs(design.a[k]);
+    const std::size_t past = std::max(design.b.size(), design.a.size()) - 1;
+    if (outputs == 0.0) return {inputs, past_inputs, 0.0, past};
+
+    constexpr std::size_t most_samples = std::size_t{1} << 22, piece_samples = 1024;
+    RecursionFilter loop(Recursion{{1.0}, design.a});
+    std::vector<double> last(2 * order, 0.0), piece(piece_samples);  // the newest values of g, the newest last
+    double sum = 0.0;
+    for (std::size_t done = 0; done < most_samples; done += piece_samples) {
+        std::fill(piece.begin(), piece.end(), 0.0);
+        if (done == 0) piece[0] = 1.0;
+        loop.process(piece, piece);
+        sum += sum_of(piece);
+        std::copy(piece.end() - static_cast<std::ptrdiff_t>(last.size()), piece.end(), last.begin());
+        double left = 0.0;  // of a state of sum 1
+        for (std::size_t i = 1; i <= order; ++i) {
+            double of_this = 0.0;
+            for (std::size_t age = 0; age < order; ++age) {
+                double u = 0.0;
+                for (std::size_t k = i; k <= order; ++k) u -= design.a[k] * last[last.size() - 1 - age - (k - i)];
+                of_this += std::fabs(u);
+            }
+            left = std::max(left, of_this);
+        }
+        if (!(left <= 0.5)) continue;
+        const double of_state = outputs * sum / (1.0 - left);
+        const double coming = of_state * sum_of(std::span(last).last(order));
+        if (coming > 0x1p-20 * sum && done + piece_samples < most_samples) continue;
+        const double norm = sum + coming;
+        return {norm * inputs, norm * past_inputs, of_state, past};
+    }
+    return {no_limit, no_limit, no_limit, past};
+}
+
+namespace {
+
+// Of N sums of R M samples, over the higher rate.
+template <class Cic>
+double reach_of(const Cic& design) {
+    return static_cast<double>(design.order) * (window_of(design) - 1);
+}
+template <class Cic>
+double gain_of(const Cic& design) {
+    return gain_of_sums(design) / divisor_of(design);
+}
+
+}  // namespace
+
+Memory memory_of(const CicDecimator& design) {
+    return {gain_of(design), gain_of(design), 0.0, static_cast<std::size_t>(reach_of(design))};
+}
+
+Memory memory_of(const CicInterpolator& design) {
+    return {gain_of(design), gain_of(design), 0.0, static_cast<std::size_t>(reach_of(design) / design.factor)};
+}
+
+Memory memory_of(const FirDecimator& design) { return memory_of(Fir{design.taps}); }
+
+Memory memory_of(const FirInterpolator& design) {
+    Memory memory = memory_of(Fir{design.taps});
+    memory.samples /= static_cast<std::size_t>(design.factor);
+    return memory;
+}
+
 double share(double gain, double amount) { return gain == 0.0 || amount == 0.0 ? 0.0 : gain * amount; }
 
 void PastSum::add(std::span<const double> piece) {
-    if (samples_ <= piece.size()) {
-        value_ = sum_of(piece.last(samples_));
-        return;
+    const std::span<const double> recent = piece.last(std::min(samples_, piece.size()));
+    if (recent.size() == samples_) {
+        parts_.clear();
+        count_ = 0;
     }
-    ring_.resize((samples_ + piece.size() - 1) / piece.size(), 0.0);
-    ring_[place_] = sum_of(piece);
-    place_ = place_ + 1 == ring_.size() ? 0 : place_ + 1;
-    value_ = sum_of(ring_);
+    // Small pieces are put together: what is summed below stays short.
+    if (!parts_.empty() && parts_.back().count < samples_ / 16) {
+        parts_.back().count += recent.size();
+        parts_.back().sum += sum_of(recent);
+    } else {
+        parts_.push_back({recent.size(), sum_of(recent)});
+    }
+    count_ += recent.size();
+    for (; parts_.size() > 1 && count_ - parts_.front().count >= samples_; parts_.pop_front())
+        count_ -= parts_.front().count;
+    value_ = 0.0;
+    for (const Part& part : parts_) value_ += part.sum;
 }
 
 }  // namespace halflsb

@@ -1,46 +1,28 @@
 #include "oracle/filters/moving_average.hpp"
 
-#include <algorithm>
-
 namespace halflsb {
 
-MovingAverageFilter::MovingAverageFilter(const MovingAverage& design)
+MovingAverageFilter::MovingAverageFilter(const MovingAverage& design, bool is_growing)
     : points_(design.points),
-      stretch_(static_cast<std::size_t>(design.points), 0.0),
-      tails_(static_cast<std::size_t>(design.points) + 1, 0.0) {}
+      is_growing_(is_growing),
+      held_(is_growing ? 0.0 : points_),
+      sum_(static_cast<std::size_t>(design.points)) {}
 
 void MovingAverageFilter::reset() {
-    std::fill(tails_.begin(), tails_.end(), 0.0);
-    filled_ = 0;
-    head_ = 0.0;
+    held_ = is_growing_ ? 0.0 : points_;
+    sum_.reset();
 }
 
-void MovingAverageFilter::finish_stretch() {
-    double tail = 0.0;
-    for (std::size_t j = stretch_.size(); j-- > 0;) {
-        tail += stretch_[j];
-        tails_[j] = tail;
-    }
-    filled_ = 0;
-    head_ = 0.0;
+void MovingAverageFilter::preload(double value) {
+    held_ = points_;
+    sum_.preload(value);
 }
 
 void MovingAverageFilter::process(std::span<const double> in, std::span<double> out) {
+    sum_.process(in, out);
     std::size_t done = 0;
-    while (done < in.size()) {
-        const std::size_t count = std::min(in.size() - done, stretch_.size() - filled_);
-        double head = head_;
-        for (std::size_t i = 0; i < count; ++i) {
-            const double sample = in[done + i];
-            stretch_[filled_ + i] = sample;
-            head += sample;
-            out[done + i] = (head + tails_[filled_ + i + 1]) / points_;
-        }
-        head_ = head;
-        filled_ += count;
-        done += count;
-        if (filled_ == stretch_.size()) finish_stretch();
-    }
+    for (; done < in.size() && held_ < points_; ++done) out[done] /= ++held_;
+    for (; done < in.size(); ++done) out[done] /= points_;
 }
 
 }  // namespace halflsb

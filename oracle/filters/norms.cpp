@@ -1,9 +1,12 @@
 // What a filter does to one sample, how large its output can get, and how long it remembers.
+#include <algorithm>
 #include <cmath>
 #include <cstdint>
 
 #include "oracle/filters/filter.hpp"
 #include "oracle/filters/impulse_run.hpp"
+#include "oracle/filters/multirate_norms.hpp"
+#include "oracle/filters/rates.hpp"
 
 namespace halflsb {
 
@@ -30,18 +33,7 @@ std::int64_t start_of_tail_in(const FilterChain& chain, std::size_t piece_index,
     return first;
 }
 
-}  // namespace
-
-std::vector<double> impulse_response(const FilterChain& chain, std::size_t length) {
-    std::vector<double> response(length, 0.0);
-    if (length > 0) response[0] = 1.0;
-    make_filter(chain)->process(response, response);
-    return response;
-}
-
-std::optional<std::int64_t> flush_samples(const FilterChain& chain, double full_scale, double half_step) {
-    const double limit = half_step / full_scale * (1.0 - slack);
-    if (!(limit > 0.0)) return std::nullopt;
+std::optional<std::int64_t> flush_of_steady_rate(const FilterChain& chain, double limit) {
     // Run until the rest does not matter. That takes more samples than the answer, hence twice the most.
     ImpulseRun run(chain);
     std::vector<double> sums;
@@ -59,7 +51,7 @@ std::optional<std::int64_t> flush_samples(const FilterChain& chain, double full_
     return zeros <= most_samples ? std::optional(zeros) : std::nullopt;
 }
 
-double l1_norm(const FilterChain& chain, double tail) {
+double l1_of_steady_rate(const FilterChain& chain, double tail) {
     ImpulseRun run(chain);
     double sum = 0.0, last_quarter = 0.0;
     for (std::int64_t samples = 0; samples < most_samples; samples += piece_samples) {
@@ -71,6 +63,62 @@ double l1_norm(const FilterChain& chain, double tail) {
     // The slowest pole alone is left: each further quarter is a fixed fraction of the one before.
     const double decay = std::exp(0.25 * static_cast<double>(most_samples) * std::log(largest_pole_radius(chain)));
     return decay < 1.0 ? sum + last_quarter * decay / (1.0 - decay) : no_limit;
+}
+
+/// A chain with a median in it: what stands before the first one, and what behind.
+struct SplitAtMedian {
+    FilterChain before, behind;
+    int points;
+};
+
+std::optional<SplitAtMedian> split_at_median(const FilterChain& chain) {
+    for (auto at = chain.begin(); at != chain.end(); ++at) {
+        if (const auto* median = std::get_if<Median>(&at->design))
+            return SplitAtMedian{{chain.begin(), at}, {at + 1, chain.end()}, median->points};
+    }
+    return std::nullopt;
+}
+
+// A median moves by no more than the largest change of its inputs, and forgets after its points. So the past's share
+// may be half the limit at its input, reaching the output through what stands behind, and half of it there.
+std::optional<std::int64_t> flush_around_median(const SplitAtMedian& split, double full_scale, double half_step) {
+    const auto before = flush_samples(split.before, full_scale, 0.5 * half_step / std::max(1.0, l1_norm(split.behind)));
+    const auto behind = flush_samples(split.behind, full_scale * std::max(1.0, l1_norm(split.before)), 0.5 * half_step);
+    if (!before || !behind) return std::nullopt;
+    const RateRatio ratio = rate_ratio(split.before);
+    const std::int64_t inner = split.points - 1 + *behind;  // at the rate of the median
+    const std::int64_t zeros = *before + (inner * ratio.down + ratio.up - 1) / ratio.up;
+    FilterChain whole = split.before;
+    whole.insert(whole.end(), split.behind.begin(), split.behind.end());
+    const std::int64_t cycle = rate_cycle(whole).inputs;
+    return (zeros + cycle - 1) / cycle * cycle;
+}
+
+}  // namespace
+
+std::vector<double> impulse_response(const FilterChain& chain, std::size_t length) {
+    const auto filter = make_filter(from_rest(chain));
+    std::vector<double> response, piece(1, 1.0), out;
+    while (response.size() < length) {
+        out.resize(filter->outputs_for(piece.size()));
+        filter->process(piece, out);
+        response.insert(response.end(), out.begin(), out.end());
+        piece.assign(static_cast<std::size_t>(piece_samples), 0.0);
+    }
+    response.resize(length);
+    return response;
+}
+
+std::optional<std::int64_t> flush_samples(const FilterChain& chain, double full_scale, double half_step) {
+    if (const auto split = split_at_median(chain)) return flush_around_median(*split, full_scale, half_step);
+    const double limit = half_step / full_scale * (1.0 - slack);
+    if (!(limit > 0.0)) return std::nullopt;
+    return changes_rate(chain) ? flush_of_changing_rate(chain, limit) : flush_of_steady_rate(chain, limit);
+}
+
+double l1_norm(const FilterChain& chain, double tail) {
+    if (const auto split = split_at_median(chain)) return l1_norm(split->before, tail) * l1_norm(split->behind, tail);
+    return changes_rate(chain) ? l1_of_changing_rate(chain, tail) : l1_of_steady_rate(chain, tail);
 }
 
 }  // namespace halflsb

@@ -4,9 +4,13 @@
 #include <array>
 #include <cmath>
 #include <complex>
+#include <limits>
 
+#include "oracle/filters/cic.hpp"
+#include "oracle/filters/double_double.hpp"
 #include "oracle/filters/exact_sums.hpp"
 #include "oracle/filters/filter.hpp"
+#include "oracle/filters/rates.hpp"
 
 namespace halflsb {
 
@@ -104,12 +108,73 @@ std::complex<double> response_of(const Comb& design, double f) {
     return two_taps(design.direct, design.forward, h, rest) / two_taps(1.0, design.feedback, h, rest);
 }
 
+// p0 + p1 z^-1 + ... at z = e^(j w): Horner's rule in some 104 bits, since the terms of a sharp recursion are
+// thousands of times their sum. cos w = 1 - 2 sin^2(w / 2), and from the other end of the axis likewise.
+std::complex<double> polynomial(const std::vector<double>& p, double f) {
+    DoubleDouble cosine;
+    if (f < 0.25) {
+        const DoubleDouble half(sin_pi(f));
+        cosine = DoubleDouble(1.0) - DoubleDouble(2.0) * half * half;
+    } else {
+        const DoubleDouble half(cos_pi(f));
+        cosine = DoubleDouble(2.0) * half * half - DoubleDouble(1.0);
+    }
+    const DoubleDouble sine(sin_pi(2.0 * f));
+    DoubleDouble real, imaginary;
+    for (std::size_t k = p.size(); k-- > 0;) {
+        const DoubleDouble turned = real * cosine + imaginary * sine + DoubleDouble(p[k]);
+        imaginary = imaginary * cosine - real * sine;
+        real = turned;
+    }
+    return {to_double(real), to_double(imaginary)};
+}
+
+std::complex<double> response_of(const Recursion& design, double f) {
+    return polynomial(design.b, f) / polynomial(design.a, f);
+}
+
+std::complex<double> response_of(const Median&, double) {
+    constexpr double none = std::numeric_limits<double>::quiet_NaN();
+    return {none, none};
+}
+
+// The moving average of R M samples, N times over; its gain at zero frequency is 1.
+template <class Cic>
+std::complex<double> response_of_sums(const Cic& design, double f) {
+    const std::complex<double> one = response_of(MovingAverage{window_of(design)}, f);
+    std::complex<double> product = gain_of_sums(design) / divisor_of(design);
+    for (int i = 0; i < design.order; ++i) product *= one;
+    return product;
+}
+
+std::complex<double> response_of(const CicDecimator& design, double f) { return response_of_sums(design, f); }
+std::complex<double> response_of(const FirDecimator& design, double f) { return response_of(Fir{design.taps}, f); }
+
+// f is of the higher rate, and the base image has one factor-th of the input's amplitude.
+std::complex<double> response_of(const CicInterpolator& design, double f) {
+    return response_of_sums(design, f) / static_cast<double>(design.factor);
+}
+std::complex<double> response_of(const FirInterpolator& design, double f) {
+    return response_of(Fir{design.taps}, f) / static_cast<double>(design.factor);
+}
+
+// Beyond 0 .. 1/2, where a rate change puts frequencies.
+std::complex<double> response_anywhere(const FilterDesign& design, double f) {
+    const double base = std::remainder(f, 1.0);
+    const auto response = std::visit([&](const auto& kind) { return response_of(kind, std::fabs(base)); }, design);
+    return base < 0.0 ? std::conj(response) : response;
+}
+
 }  // namespace
 
 std::complex<double> response_at(const FilterChain& chain, double cycles_per_sample) {
     std::complex<double> product = 1.0;
     for (const FilterStage& stage : chain) {
-        product *= std::visit([&](const auto& design) { return response_of(design, cycles_per_sample); }, stage.design);
+        // A filter works at the higher one of its two rates.
+        const RateRatio ratio = rate_ratio(stage.design);
+        cycles_per_sample /= ratio.up;
+        product *= response_anywhere(stage.design, cycles_per_sample);
+        cycles_per_sample *= ratio.down;
     }
     return product;
 }

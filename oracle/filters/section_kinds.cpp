@@ -99,9 +99,9 @@ FilterKind biquad_cascade_kind() {
              "y[n-2].",
              {coefficients_parameter("sections", ParameterType::sections,
                                      "1 .. 64 sections, each [b0, b1, b2, a1, a2], or [b0, b1, b2, 1, a1, a2]."),
-              coefficients_parameter("sections_file", ParameterType::file,
-                                     "Instead of sections: a file with one number a line, b0, b1, b2, a1, a2 of each "
-                                     "section in turn.")}},
+              coefficients_parameter(
+                  "sections_file", ParameterType::file,
+                  "Instead of sections: a file of them, text, CSV, NPY or the firmware's own C source.")}},
             make_cascade,
             complaint_about_sections};
 }

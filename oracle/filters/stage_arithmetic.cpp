@@ -1,5 +1,7 @@
 #include "oracle/filters/stage_arithmetic.hpp"
 
+#include <initializer_list>
+
 #include "stimuli/format_names.hpp"
 #include "stimuli/values_check.hpp"
 
@@ -31,53 +33,59 @@ std::optional<Error> contradiction_in(const StageArithmetic& made, const Paramet
     return std::nullopt;
 }
 
-}  // namespace
-
-std::string_view name_of(Overflow overflow) { return overflow == Overflow::saturate ? "saturate" : "wrap"; }
-
-const Recipe& arithmetic_recipe() {
-    static const Recipe recipe{
-        "arithmetic",
-        "What the firmware promises of its arithmetic: [arithmetic] for every stage, [filter.arithmetic] for one.",
-        {
-            {.name = "coefficient_fraction_bits",
-             .type = ParameterType::integer,
-             .unit = "bits",
-             .minimum = 0.0,
-             .maximum = 62.0,
-             .help = "The firmware stores each coefficient as a multiple of 2^-this, rounded half away from zero."},
-            {.name = "accumulator_bits",
-             .type = ParameterType::integer,
-             .unit = "bits",
-             .minimum = 8.0,
-             .maximum = 64.0,
-             .help = "Width of the sum of products."},
-            {.name = "rounding",
-             .type = ParameterType::choice,
-             .choices = rounding_names(),
-             .help = "Rounding of the result to output words.",
-             .optional_choice = true},
-            {.name = "output_overflow",
-             .type = ParameterType::choice,
-             .choices = {"saturate", "wrap"},
-             .help = "What becomes of a result beyond the ends of the output words."},
-            {.name = "stage_format",
-             .type = ParameterType::choice,
-             .choices = format_names(),
-             .help = "Words between this stage and the next, at whose ends it overflows; wide when left out.",
-             .optional_choice = true},
-        }};
-    return recipe;
+/// The value of that name in the words of a choice; what was not given stays as it is.
+template <class Value>
+void take(const ParameterValues& values, std::string_view name, std::initializer_list<Value> all,
+          std::optional<Value>& target) {
+    const auto word = values.text(arithmetic_recipe(), name);
+    if (!word) return;
+    for (const Value each : all) {
+        if (name_of(each) == *word) target = each;
+    }
 }
+
+void take(const ParameterValues& values, std::string_view name, std::optional<int>& target) {
+    if (const auto number = values.integer(arithmetic_recipe(), name)) target = static_cast<int>(*number);
+}
+
+void take(const ParameterValues& values, std::string_view name, std::string_view yes, std::optional<bool>& target) {
+    if (const auto word = values.text(arithmetic_recipe(), name)) target = *word == yes;
+}
+
+void take(const ParameterValues& values, std::string_view name, std::optional<Rounding>& target) {
+    if (const auto word = values.text(arithmetic_recipe(), name)) target = rounding_from(*word);
+}
+
+}  // namespace
 
 Outcome<StageArithmetic> make_arithmetic(const ParameterValues& values, const StageArithmetic& defaults) {
     const Recipe& recipe = arithmetic_recipe();
     if (auto error = misfit_of(recipe, values)) return *error;
     StageArithmetic made = defaults;
-    if (const auto bits = values.integer(recipe, "coefficient_fraction_bits"))
-        made.coefficient_fraction_bits = static_cast<int>(*bits);
-    if (const auto bits = values.integer(recipe, "accumulator_bits")) made.accumulator_bits = static_cast<int>(*bits);
-    if (const auto word = values.text(recipe, "rounding")) made.rounding = rounding_from(*word);
+    take(values, "coefficient_fraction_bits", made.coefficient_fraction_bits);
+    take(values, "coefficient_bits", made.coefficient_bits);
+    if (const auto word = values.text(recipe, "coefficient_rounding"))
+        made.coefficient_rounding = *rounding_from(*word);
+    take(values, "feedback_coefficients", {FeedbackCoefficients::added, FeedbackCoefficients::subtracted},
+         made.feedback_coefficients);
+    take(values, "number", {NumberKind::integer, NumberKind::float32}, made.number);
+    take(values, "structure",
+         {Structure::direct_1, Structure::direct_2, Structure::transposed_2, Structure::running_sum,
+          Structure::fresh_sum, Structure::difference, Structure::leak},
+         made.structure);
+    take(values, "accumulator_bits", made.accumulator_bits);
+    take(values, "accumulator_fraction_bits", made.accumulator_fraction_bits);
+    take(values, "accumulator_overflow", {Overflow::wrap, Overflow::saturate}, made.accumulator_overflow);
+    take(values, "rounding_at", {RoundingAt::sum, RoundingAt::product, RoundingAt::output}, made.rounding_at);
+    take(values, "rounding", made.rounding);
+    take(values, "output_rounding", made.output_rounding);
+    take(values, "fraction_saving", "on", made.fraction_saving);
+    take(values, "state_bits", made.state_bits);
+    take(values, "state_fraction_bits", made.state_fraction_bits);
+    take(values, "state_overflow", {Overflow::wrap, Overflow::saturate}, made.state_overflow);
+    take(values, "division", {Division::divide, Division::shift, Division::reciprocal}, made.division);
+    take(values, "multiply_add", "fused", made.fused_multiply_add);
+    take(values, "summation", {Summation::newest_first, Summation::oldest_first}, made.summation);
     // Asked for, not defaulted: what is left out is as the defaults have it.
     if (values.has("output_overflow")) {
         made.output_overflow = values.text(recipe, "output_overflow") == "wrap" ? Overflow::wrap : Overflow::saturate;

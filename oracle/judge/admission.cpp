@@ -4,6 +4,8 @@
 #include <charconv>
 #include <cstdlib>
 
+#include "oracle/arithmetic/described.hpp"
+#include "oracle/filters/rates.hpp"
 #include "oracle/judge/latency_evidence.hpp"
 #include "oracle/judge/response_verdict.hpp"
 
@@ -71,6 +73,42 @@ void check_unchanged(const Case& the_case, const Rule& rule, std::vector<Refusal
                         "start it with \"reset\" or \"flush\", or write the rule in another case"});
 }
 
+/// Whether `start_samples` zeros leave nothing in the firmware's states, rounding errors and remainders included.
+bool forgets_all(const DescribedStage& stage) {
+    if (stage.fraction_saving) return false;
+    if (std::holds_alternative<Fir>(stage.stage.design)) return true;
+    return std::holds_alternative<MovingAverage>(stage.stage.design) &&
+           (stage.number == NumberKind::integer || stage.structure == Structure::fresh_sum);
+}
+
+/// A twin needs the whole arithmetic, and starts as the board does.
+void check_exact(const Plan& plan, const Case& the_case, const Rule& rule, std::vector<Refusal>& refusals) {
+    if (plan.filter_is_unknown) return;
+    bool forgets = true;
+    for (int channel = 1; channel <= plan.signal.channels; ++channel) {
+        const auto result = describe(chain_of(plan, the_case, channel), plan.signal.input, plan.signal.output,
+                                     plan.signal.output_per_input);
+        if (!result.described) return;  // the reader has refused it
+        if (const auto& missing = result.described->missing) {
+            const bool is_alone = result.described->stages.size() == 1;
+            refusals.push_back({rule.position,
+                                "exact needs the whole arithmetic, and " +
+                                    (is_alone ? "" : "of stage " + std::to_string(missing->stage + 1) + " ") +
+                                    missing->error.problem,
+                                missing->error.remedy});
+            return;
+        }
+        for (const DescribedStage& stage : result.described->stages) forgets = forgets && forgets_all(stage);
+    }
+    if (the_case.start == Start::running || (the_case.start == Start::flush && !forgets)) {
+        refusals.push_back({rule.position,
+                            "case \"" + the_case.name + "\" starts " +
+                                (the_case.start == Start::running ? "running" : "with a flush") +
+                                ", which leaves the firmware in a state that nobody knows to the bit",
+                            "start it with \"reset\", or write the rule in another case"});
+    }
+}
+
 /// A running case must have something left to judge.
 void check_discard(const Case& the_case, std::vector<Refusal>& refusals) {
     if (judged_samples(the_case) > 0) return;
@@ -83,6 +121,15 @@ void check_discard(const Case& the_case, std::vector<Refusal>& refusals) {
 
 void check_response(const Plan& plan, const Case& the_case, const Rule& rule, std::vector<Refusal>& refusals) {
     if (plan.filter_is_unknown) return;
+    for (int channel = 1; channel <= plan.signal.channels; ++channel) {
+        if (!is_driven(the_case, channel) || is_linear(chain_of(plan, the_case, channel))) continue;
+        refusals.push_back({rule.position,
+                            "case \"" + the_case.name +
+                                "\" asks for the response of a filter with a median in it, which is not linear and "
+                                "has none",
+                            "leave the rule out; rules about error, latency and unchanged hold"});
+        return;
+    }
     const Spectrum spectrum = measured_spectrum(the_case);
     const std::string noise = "use noise or a chirp over that band";
     if (spectrum.tones.empty() && spectrum.bands.empty()) {
@@ -125,10 +172,27 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
     }
 }
 
+/// The rules compare sample n of the response with sample n of the reference.
+void check_rate(const Plan& plan, const Case& the_case, std::vector<Refusal>& refusals) {
+    for (int channel = 1; channel <= plan.signal.channels && !plan.filter_is_unknown; ++channel) {
+        const FilterChain chain = chain_of(plan, the_case, channel);
+        if (!changes_rate(chain)) continue;
+        const RateRatio ratio = rate_ratio(chain);
+        refusals.push_back({the_case.position,
+                            "the filter of case \"" + the_case.name + "\" changes the sample rate, " +
+                                std::to_string(ratio.up) + " out for " + std::to_string(ratio.down) +
+                                " in, and its rules compare sample with sample",
+                            "describe the filter up to where the rate changes, and let the board return that"});
+        return;
+    }
+}
+
 }  // namespace
 
 std::vector<Refusal> refusals(const Plan& plan, const Case& the_case) {
     std::vector<Refusal> found;
+    check_rate(plan, the_case, found);
+    if (!found.empty()) return found;
     check_discard(the_case, found);
     if (!found.empty()) return found;
     for (const Rule& rule : the_case.rules) {
@@ -138,6 +202,8 @@ std::vector<Refusal> refusals(const Plan& plan, const Case& the_case) {
             check_response(plan, the_case, rule, found);
         } else if (std::holds_alternative<UnchangedRule>(rule.kind)) {
             check_unchanged(the_case, rule, found);
+        } else if (std::holds_alternative<ExactRule>(rule.kind)) {
+            check_exact(plan, the_case, rule, found);
         }
     }
     return found;

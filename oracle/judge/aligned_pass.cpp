@@ -16,6 +16,15 @@ JudgedFigure at_most(std::string name, double value, double limit, std::string u
     return figure;
 }
 
+/// Where derived limits say nothing, and which word stands in their way.
+std::string exempt_text(std::int64_t exempt, const RailWatch* rails) {
+    const auto from = rails == nullptr ? std::nullopt : rails->first_unsafe_index();
+    if (!from) return "derived limits say nothing of " + std::to_string(exempt) + " samples";
+    return "from sample " + std::to_string(*from) + " on " + rails->unsafe_node() +
+           " may leave its word: derived limits say nothing of " + std::to_string(exempt) +
+           (exempt == 1 ? " sample" : " samples") + ", only exact does";
+}
+
 }  // namespace
 
 AlignedPass::AlignedPass(const Plan& plan, const Case& the_case, int channel, int lag_samples)
@@ -27,24 +36,22 @@ AlignedPass::AlignedPass(const Plan& plan, const Case& the_case, int channel, in
       first_judged_(first_judged_sample(the_case)),
       to_skip_(lag_samples < 0 ? static_cast<std::size_t>(-lag_samples) : 0) {
     if (first_judged_ > 0 && lag_samples > 0) first_judged_ += lag_samples;
-    bool wants_response = false;
+    bool has_derived = false;
     for (const Rule& rule : the_case.rules) {
         if (const auto* error = std::get_if<ErrorRule>(&rule.kind); error != nullptr && says_something(*error)) {
+            const bool derived = is_derived(*error);
+            if (derived && !has_derived) derived_ = derived_limits(plan, the_case, channel).value_or(DerivedLimits{});
+            has_derived = has_derived || derived;
             std::optional<double> limit;
-            if (error->largest) limit = value_of(*error->largest, plan.signal);
-            error_rules_.push_back({&rule, ErrorMeasure(limit), FirstBadWatch(plan.signal.output)});
+            if (error->largest) limit = value_of(*error->largest, plan.signal, derived_.largest);
+            error_rules_.push_back({&rule, ErrorMeasure(limit), FirstBadWatch(plan.signal.output), derived});
             error_rules_.back().measure.start_at(first_judged_);
         }
-        wants_response = wants_response || (is_driven_ && std::holds_alternative<ResponseRule>(rule.kind));
     }
-    if (wants_response) response_measure_ = make_response_measure(the_case);
-    if (lag_samples > 0) {
-        const auto silence = static_cast<std::size_t>(lag_samples);
-        codes_.assign(silence, zero_code(plan.signal.input));
-        stimulus_.assign(silence, 0.0);
-        declared_.assign(silence, 0.0);
-        if (wants_response) design_.assign(silence, 0.0);
-    }
+    const WantedReferences wanted = wanted_references(the_case, channel);
+    if (wanted.design) response_measure_ = make_response_measure(the_case);
+    if (wanted.twin) exact_.emplace(plan.signal.output);
+    if (lag_samples > 0) waiting_.append_silence(static_cast<std::size_t>(lag_samples), plan.signal, wanted);
 }
 
 bool AlignedPass::says_something(const ErrorRule& rule) const {
@@ -54,72 +61,73 @@ bool AlignedPass::says_something(const ErrorRule& rule) const {
 
 void AlignedPass::add(const ReferenceBlock& reference, std::span<const Code> response) {
     if (lag_ == 0) {
-        measure_judged(reference.codes, reference.stimulus, reference.declared, reference.design, response);
+        measure_judged(reference, response);
         return;
     }
     const auto skip = std::min(to_skip_, reference.codes.size());
     to_skip_ -= skip;
-    const auto append = [skip](auto& waiting, auto fresh) {
-        if (!fresh.empty())
-            waiting.insert(waiting.end(), fresh.begin() + static_cast<std::ptrdiff_t>(skip), fresh.end());
-    };
-    append(codes_, reference.codes);
-    append(stimulus_, reference.stimulus);
-    append(declared_, reference.declared);
-    append(design_, reference.design);
+    waiting_.append(reference.after(skip));
     response_.insert(response_.end(), response.begin(), response.end());
-
-    const std::size_t ready = std::min(codes_.size(), response_.size());
-    const auto head = [ready](auto& waiting) { return std::span(waiting).first(std::min(ready, waiting.size())); };
-    measure_judged(head(codes_), head(stimulus_), head(declared_), head(design_), head(response_));
-    const auto drop = [ready](auto& waiting) {
-        waiting.erase(waiting.begin(), waiting.begin() + static_cast<std::ptrdiff_t>(std::min(ready, waiting.size())));
-    };
-    drop(codes_);
-    drop(stimulus_);
-    drop(declared_);
-    drop(design_);
-    drop(response_);
+    const std::size_t ready = std::min(waiting_.size(), response_.size());
+    measure_judged(waiting_.first(ready), std::span(response_).first(ready));
+    waiting_.drop(ready);
+    response_.erase(response_.begin(), response_.begin() + static_cast<std::ptrdiff_t>(ready));
 }
 
-void AlignedPass::measure_judged(std::span<const Code> codes, std::span<const double> stimulus,
-                                 std::span<const double> declared, std::span<const double> design,
-                                 std::span<const Code> response) {
+void AlignedPass::measure_judged(const ReferenceBlock& reference, std::span<const Code> response) {
     const auto count = static_cast<std::int64_t>(response.size());
     const auto unjudged = static_cast<std::size_t>(std::clamp<std::int64_t>(first_judged_ - next_index_, 0, count));
     next_index_ += static_cast<std::int64_t>(unjudged);
-    const auto rest = [unjudged](auto span) { return span.subspan(std::min(unjudged, span.size())); };
-    measure(rest(codes), rest(stimulus), rest(declared), rest(design), rest(response));
+    measure(reference.after(unjudged), response.subspan(unjudged));
 }
 
-void AlignedPass::measure(std::span<const Code> codes, std::span<const double> stimulus,
-                          std::span<const double> declared, std::span<const double> design,
-                          std::span<const Code> response) {
+void AlignedPass::measure(const ReferenceBlock& reference, std::span<const Code> response) {
     response_values_.resize(response.size());
     values_of(plan_.signal.output, response, response_values_);
-    for (ErrorRuleState& state : error_rules_) {
-        state.measure.add(declared, response_values_);
-        state.watch.add(next_index_, codes, declared, response, state.measure.value().first_beyond);
-    }
+    for (ErrorRuleState& state : error_rules_) state.add(next_index_, reference, response, response_values_);
+    if (exact_) exact_->add(next_index_, reference.codes, reference.twin, response);
     if (response_measure_) {
         design_error_.resize(response.size());
-        std::transform(response_values_.begin(), response_values_.end(), design.begin(), design_error_.begin(),
-                       [](double measured, double ideal) { return measured - ideal; });
-        response_measure_->add(stimulus, design_error_);
+        std::transform(response_values_.begin(), response_values_.end(), reference.design.begin(),
+                       design_error_.begin(), [](double measured, double ideal) { return measured - ideal; });
+        response_measure_->add(reference.stimulus, design_error_);
     }
     next_index_ += static_cast<std::int64_t>(response.size());
 }
 
-RuleVerdict AlignedPass::error_verdict(const ErrorRuleState& state) const {
+void AlignedPass::ErrorRuleState::add(std::int64_t first_index, const ReferenceBlock& reference,
+                                      std::span<const Code> response, std::span<const double> response_values) {
+    const std::size_t count = response.size();
+    std::size_t done = is_derived ? 0 : count;
+    if (!is_derived) measure.add(reference.declared, response_values);
+    while (done < count) {  // stretches of samples that count, and of those that do not
+        const bool counts = reference.exempt.empty() || reference.exempt[done] == 0;
+        std::size_t end = done + 1;
+        while (end < count && (reference.exempt.empty() || reference.exempt[end] == 0) == counts) ++end;
+        if (counts) {
+            measure.start_at(first_index + static_cast<std::int64_t>(done));
+            measure.add(reference.declared.subspan(done, end - done), response_values.subspan(done, end - done));
+        } else {
+            exempt += static_cast<std::int64_t>(end - done);
+        }
+        done = end;
+    }
+    watch.add(first_index, reference.codes, reference.declared, response, measure.value().first_beyond);
+}
+
+RuleVerdict AlignedPass::error_verdict(const ErrorRuleState& state, const RailWatch* rails) const {
     const auto& rule = std::get<ErrorRule>(state.rule->kind);
     const ErrorFigures figures = state.measure.value();
     RuleVerdict verdict{*state.rule, Verdict::undecided, "declared", {}, {}, state.watch.found()};
-    const auto told = [&](const std::optional<Limit>& limit, std::string name, double value) {
+    const auto clip = rails == nullptr ? std::nullopt : rails->first_clip_index();
+    const auto told = [&](const std::optional<Limit>& limit, std::string name, double value, double derived) {
         const Limit::In in = limit ? limit->in : natural_unit(plan_.signal);
         const double worth = worth_of(in, plan_.signal);
         if (limit) {
-            verdict.figures.push_back(
-                at_most(std::move(name), value / worth, limit->number, unit_name(in, plan_.signal)));
+            verdict.figures.push_back(at_most(std::move(name), value / worth,
+                                              limit->is_derived ? derived / worth : limit->number,
+                                              unit_name(in, plan_.signal)));
+            if (limit->is_derived) verdict.figures.back().note = "derived";
         } else {
             verdict.figures.push_back({std::move(name),
                                        judged(value / worth),
@@ -131,11 +139,13 @@ RuleVerdict AlignedPass::error_verdict(const ErrorRuleState& state) const {
                                        {}});
         }
     };
-    told(rule.largest, "max", figures.largest);
-    told(rule.rms, "rms", figures.rms);
-    told(rule.bias, "bias", rule.bias ? std::abs(figures.bias) : figures.bias);
+    told(rule.largest, "max", figures.largest, derived_.largest);
+    told(rule.rms, "rms", figures.rms, clip ? derived_.worst_rms : derived_.rms);
+    told(rule.bias, "bias", rule.bias ? std::abs(figures.bias) : figures.bias,
+         clip ? derived_.worst_bias : derived_.bias);
     // The limit holds for the magnitude; which way the firmware leans is the first thing its author asks.
-    if (rule.bias && figures.bias < 0.0) verdict.figures.back().note = "negative";
+    if (rule.bias && figures.bias < 0.0)
+        verdict.figures.back().note = rule.bias->is_derived ? "negative, derived" : "negative";
     if (is_driven_ && (rule.min_snr_db || figures.snr_db)) {
         JudgedFigure snr{"snr", std::nullopt, std::nullopt, std::nullopt, "dB", true, true, {}};
         if (figures.snr_db) snr.value = judged(*figures.snr_db);
@@ -154,7 +164,7 @@ RuleVerdict AlignedPass::error_verdict(const ErrorRuleState& state) const {
         verdict.figures.push_back(std::move(snr));
     }
     if (figures.samples == 0) {
-        verdict.reason = "no sample was compared";
+        verdict.reason = state.exempt > 0 ? exempt_text(state.exempt, rails) : "no sample was compared";
         return verdict;
     }
     const bool passed =
@@ -165,25 +175,34 @@ RuleVerdict AlignedPass::error_verdict(const ErrorRuleState& state) const {
         verdict.reason =
             std::to_string(figures.beyond) + " of " + std::to_string(figures.samples) + " samples beyond max";
     }
+    if (state.exempt > 0) {
+        verdict.reason += (verdict.reason.empty() ? "" : "; ") + exempt_text(state.exempt, rails);
+    } else if (state.is_derived && clip && derived_.worst_rms != derived_.rms) {
+        verdict.reason += (verdict.reason.empty() ? "" : "; ") +
+                          ("from sample " + std::to_string(*clip) +
+                           " on a rail may be reached: derived rms and bias are those of the worst case");
+    }
     // The measure compares unrounded, the verdict rounded figures: a pass shows no bad sample.
     if (passed) verdict.first_bad.reset();
     return verdict;
 }
 
-std::optional<RuleVerdict> AlignedPass::verdict(const Rule& rule) const {
+std::optional<RuleVerdict> AlignedPass::verdict(const Rule& rule, const RailWatch* rails) const {
     if (const auto* response = std::get_if<ResponseRule>(&rule.kind)) {
         if (!response_measure_) return std::nullopt;
         return judge_response(*response, rule, plan_, case_, channel_, response_measure_->value());
     }
+    if (std::holds_alternative<ExactRule>(rule.kind) && exact_) return exact_->verdict(rule);
     for (const ErrorRuleState& state : error_rules_) {
-        if (state.rule == &rule) return error_verdict(state);
+        if (state.rule == &rule) return error_verdict(state, rails);
     }
     return std::nullopt;
 }
 
-bool AlignedPass::error_rules_pass() const {
-    return std::all_of(error_rules_.begin(), error_rules_.end(),
-                       [this](const ErrorRuleState& state) { return error_verdict(state).verdict == Verdict::pass; });
+bool AlignedPass::error_rules_pass(const RailWatch* rails) const {
+    return std::all_of(error_rules_.begin(), error_rules_.end(), [&](const ErrorRuleState& state) {
+        return error_verdict(state, rails).verdict == Verdict::pass;
+    });
 }
 
 }  // namespace halflsb

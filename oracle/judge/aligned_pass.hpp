@@ -12,10 +12,13 @@
 #include <span>
 #include <vector>
 
+#include "oracle/judge/derived_limits.hpp"
+#include "oracle/judge/exact_count.hpp"
 #include "oracle/judge/first_bad_watch.hpp"
 #include "oracle/judge/plan.hpp"
 #include "oracle/judge/reference_source.hpp"
 #include "oracle/judge/verdict.hpp"
+#include "oracle/judge/waiting_reference.hpp"
 #include "oracle/measure/error.hpp"
 #include "oracle/measure/response.hpp"
 
@@ -28,11 +31,12 @@ public:
     void add(const ReferenceBlock& reference, std::span<const Code> response);
 
     int lag_samples() const { return lag_; }
-    /// On a rule of the case: none for kinds other than error and response, and for what says nothing of a channel
-    /// that is not driven (a response rule, an error rule that limits only the SNR).
-    std::optional<RuleVerdict> verdict(const Rule& rule) const;
+    /// On a rule of the case: none for kinds other than error, exact and response, and for what says nothing of a
+    /// channel that is not driven (a response rule, an error rule that limits only the SNR).
+    /// `rails` are those of the reference that was added; derived limits need them.
+    std::optional<RuleVerdict> verdict(const Rule& rule, const RailWatch* rails) const;
     /// Every error rule passes; true when the case has none.
-    bool error_rules_pass() const;
+    bool error_rules_pass(const RailWatch* rails) const;
     bool has_error_rules() const { return !error_rules_.empty(); }
 
 private:
@@ -40,13 +44,16 @@ private:
         const Rule* rule;
         ErrorMeasure measure;
         FirstBadWatch watch;
+        bool is_derived = false;
+        std::int64_t exempt = 0;  ///< samples of which derived limits claim nothing
+
+        void add(std::int64_t first_index, const ReferenceBlock& reference, std::span<const Code> response,
+                 std::span<const double> response_values);
     };
     bool says_something(const ErrorRule& rule) const;
-    void measure_judged(std::span<const Code> codes, std::span<const double> stimulus, std::span<const double> declared,
-                        std::span<const double> design, std::span<const Code> response);
-    void measure(std::span<const Code> codes, std::span<const double> stimulus, std::span<const double> declared,
-                 std::span<const double> design, std::span<const Code> response);
-    RuleVerdict error_verdict(const ErrorRuleState& state) const;
+    void measure_judged(const ReferenceBlock& reference, std::span<const Code> response);
+    void measure(const ReferenceBlock& reference, std::span<const Code> response);
+    RuleVerdict error_verdict(const ErrorRuleState& state, const RailWatch* rails) const;
 
     const Plan& plan_;
     const Case& case_;
@@ -56,11 +63,13 @@ private:
     std::int64_t first_judged_;
     std::int64_t next_index_ = 0;  ///< of the next response sample that meets its partner
     std::vector<ErrorRuleState> error_rules_;
+    DerivedLimits derived_;  ///< where some rule asks for them
     std::unique_ptr<ResponseMeasure> response_measure_;
+    std::optional<ExactCount> exact_;
     // What waits for its partner.
     std::size_t to_skip_;
-    std::vector<Code> codes_, response_;
-    std::vector<double> stimulus_, declared_, design_;
+    WaitingReference waiting_;
+    std::vector<Code> response_;
     std::vector<double> response_values_, design_error_;
 };
 

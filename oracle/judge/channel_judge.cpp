@@ -4,7 +4,7 @@
 #include <cmath>
 #include <cstdlib>
 
-#include "oracle/judge/units.hpp"
+#include "oracle/judge/latency_sigma.hpp"
 
 namespace halflsb {
 namespace {
@@ -17,9 +17,9 @@ const Rule* find_latency_rule(const Case& the_case) {
     return found == the_case.rules.end() ? nullptr : &*found;
 }
 
-bool has_response_rule(const Case& the_case) {
-    return std::any_of(the_case.rules.begin(), the_case.rules.end(),
-                       [](const Rule& rule) { return std::holds_alternative<ResponseRule>(rule.kind); });
+double evidence_needed(const Plan& plan, const Case& the_case, int channel) {
+    const double sigma = latency_sigma(plan, the_case, channel);
+    return latency_evidence_ratio * sigma * sigma;
 }
 
 std::string samples_text(int count) {
@@ -35,14 +35,13 @@ ChannelJudge::ChannelJudge(const Plan& plan, const Case& the_case, int channel)
       is_driven_(is_driven(the_case, channel)),
       latency_rule_(find_latency_rule(the_case)),
       expected_lag_(expected_lag_of(the_case)),
-      with_design_(is_driven_ && has_response_rule(the_case)),
-      reference_(plan, the_case, channel, with_design_),
+      wanted_(wanted_references(the_case, channel)),
+      reference_(plan, the_case, channel, wanted_),
       pass_(plan, the_case, channel, expected_lag_),
       window_(lag_window_of(the_case)),
       lag_(window_, expected_lag_, first_lag_sample(the_case, window_)),
       discrimination_(window_, first_lag_sample(the_case, window_)),
-      evidence_needed_(latency_evidence_ratio * latency_sigma(the_case, plan.signal) *
-                       latency_sigma(the_case, plan.signal)) {}
+      evidence_needed_(evidence_needed(plan, the_case, channel)) {}
 
 void ChannelJudge::add(std::span<const Code> sent, std::span<const Code> response) {
     const ReferenceBlock block = reference_.next(sent);
@@ -71,8 +70,8 @@ bool ChannelJudge::begin_second_pass() {
     lags_ = lag_.value();
     const int measured = lags_->best_lag;
     if (!std::isfinite(lags_->residual_at(measured)) || measured == expected_lag_) return false;
-    second_.emplace(SecondPass{AlignedPass(plan_, case_, channel_, measured),
-                               ReferenceSource(plan_, case_, channel_, with_design_)});
+    second_.emplace(
+        SecondPass{AlignedPass(plan_, case_, channel_, measured), ReferenceSource(plan_, case_, channel_, wanted_)});
     return true;
 }
 
@@ -87,7 +86,8 @@ ChannelJudge::Latency ChannelJudge::latency_found() const {
     if (!std::isfinite(lags_->residual_at(measured))) return Latency::not_finite;
     if (measured == expected_lag_) return Latency::as_expected;
     const bool is_clear = lags_->residual_at(measured) * 100.0 <= lags_->residual_at(expected_lag_);
-    const bool meets_limits = second_->pass.has_error_rules() && second_->pass.error_rules_pass();
+    const bool meets_limits =
+        second_->pass.has_error_rules() && second_->pass.error_rules_pass(second_->reference.rails());
     return is_clear || meets_limits ? Latency::other : Latency::fits_nowhere;
 }
 
@@ -130,13 +130,13 @@ std::optional<RuleVerdict> ChannelJudge::verdict(const Rule& rule) const {
         if (&rule == latency_rule_) verdict = latency_verdict(rule);
     } else if (latency_found() == Latency::other) {
         // One fault, one failure: the latency has failed, the rest is judged where the response lies.
-        verdict = second_->pass.verdict(rule);
+        verdict = second_->pass.verdict(rule, second_->reference.rails());
         if (verdict) {
             const std::string note = "judged at the measured lag of " + samples_text(lags_->best_lag);
             verdict->reason = verdict->reason.empty() ? note : note + "; " + verdict->reason;
         }
     } else {
-        verdict = pass_.verdict(rule);
+        verdict = pass_.verdict(rule, reference_.rails());
     }
     if (verdict) verdict->channel = plan_.signal.channels == 1 ? 0 : channel_;
     return verdict;

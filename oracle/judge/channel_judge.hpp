@@ -1,4 +1,4 @@
-// Judges one channel of a case by its error, response and latency rules, in constant memory.
+// Judges one channel of a case by its error, exact, response and latency rules, in constant memory.
 //
 // A channel that is not driven got zeros: it is held against the filter of zeros, so that what leaks into it
 // from a driven one is an error; it says nothing of latency or response.
@@ -53,7 +53,7 @@ private:
     bool is_driven_;
     const Rule* latency_rule_;
     int expected_lag_;
-    bool with_design_;
+    WantedReferences wanted_;
     ReferenceSource reference_;
     AlignedPass pass_;
     int window_;

@@ -19,7 +19,9 @@ std::string_view name_of(Start start) {
 double rate_hz_of(const Plan& plan, const Case& the_case) { return the_case.rate_hz.value_or(plan.signal.rate_hz); }
 
 FilterChain chain_of(const Plan& plan, const Case& the_case, int channel) {
-    return chain_of_channel(the_case.filter ? *the_case.filter : plan.filter, channel);
+    FilterChain chain = chain_of_channel(the_case.filter ? *the_case.filter : plan.filter, channel);
+    // Behind a flush, or on the run, the first sample of the case is not the first one after a reset.
+    return the_case.start == Start::reset ? chain : from_rest(std::move(chain));
 }
 
 bool is_driven(const Case& the_case, int channel) { return !the_case.channel || *the_case.channel == channel; }

@@ -82,7 +82,8 @@ struct Plan {
 };
 
 double rate_hz_of(const Plan& plan, const Case& the_case);
-/// The stages that a channel of the case passes; channels count from 1.
+/// The stages that a channel of the case passes; channels count from 1. Each has its Initial in a case that starts with
+/// a reset, and zeros in any other.
 FilterChain chain_of(const Plan& plan, const Case& the_case, int channel);
 /// Whether the channel gets the stimulus, or zeros.
 bool is_driven(const Case& the_case, int channel);

@@ -1,11 +1,14 @@
-// What the two references say of the codes that a channel got, block by block from index 0.
+// What the references say of the codes that a channel got, block by block from index 0.
 #pragma once
 
 #include <cstdint>
 #include <memory>
+#include <optional>
 #include <span>
 #include <vector>
 
+#include "oracle/arithmetic/rail_watch.hpp"
+#include "oracle/arithmetic/twin.hpp"
 #include "oracle/judge/plan.hpp"
 
 namespace halflsb {
@@ -17,20 +20,39 @@ struct ReferenceBlock {
     std::span<const double> stimulus;  ///< values of the codes, times output_per_input
     std::span<const double> declared;
     std::span<const double> design;  ///< empty when it was not asked for
+    std::span<const Code> twin;      ///< output codes of the declared arithmetic; empty when it was not asked for
+    /// Not 0 where a rail may be reached, so that derived limits claim nothing; empty when it was not asked for.
+    std::span<const std::uint8_t> exempt;
+
+    ReferenceBlock first(std::size_t count) const;
+    /// Without the first `count`.
+    ReferenceBlock after(std::size_t count) const;
 };
+
+/// What a judge wants beside the declared reference.
+struct WantedReferences {
+    bool design = false, twin = false, rails = false;
+};
+WantedReferences wanted_references(const Case& the_case, int channel);
 
 class ReferenceSource {
 public:
-    /// Of one channel, counted from 1: both references start from rest. The plan must outlive the source.
-    ReferenceSource(const Plan& plan, const Case& the_case, int channel, bool with_design);
+    /// Of one channel, counted from 1: all references start from rest. The plan must outlive the source.
+    ReferenceSource(const Plan& plan, const Case& the_case, int channel, WantedReferences wanted);
     /// `codes` are the channel's next ones; the block is good until the next call, and no longer than they are.
     ReferenceBlock next(std::span<const Code> codes);
+    /// Nothing unless the rails were asked for.
+    const RailWatch* rails() const { return rails_ ? &*rails_ : nullptr; }
 
 private:
     const Signal& signal_;
     std::unique_ptr<Filter> declared_filter_, design_filter_;
     std::int64_t next_index_ = 0;
     std::vector<double> values_, declared_, design_;
+    std::unique_ptr<Twin> twin_;
+    std::vector<Code> twin_codes_;
+    std::optional<RailWatch> rails_;
+    std::vector<std::uint8_t> exempt_;
 };
 
 }  // namespace halflsb

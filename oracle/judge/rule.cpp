@@ -28,7 +28,8 @@ Outcome<std::optional<Limit>> read_limit(const ParameterValues& values, const Re
          {std::pair{words.lsb, Limit::In::lsb}, std::pair{words.ratio, Limit::In::full_scale_ratio},
           std::pair{words.unit, Limit::In::unit}}) {
         const auto number = values.number(recipe, name);
-        if (!number) continue;
+        const bool is_derived = values.text(recipe, name) == "derived";
+        if (!number && !is_derived) continue;
         if (limit) {
             return refuse(std::string(name),
                           "the same limit is given twice, as " + std::string(seen) + " and as " + std::string(name),
@@ -41,6 +42,11 @@ Outcome<std::optional<Limit>> read_limit(const ParameterValues& values, const Re
         if (in == Limit::In::unit && !context.full_scale_unit) {
             return refuse(std::string(name), "nothing says what full scale is worth in the unit",
                           "set full_scale_unit in [signal], or use " + std::string(words.ratio));
+        }
+        if (is_derived) {
+            limit = Limit{0.0, in, true};
+            seen = name;
+            continue;
         }
         const double widest = in == Limit::In::lsb                ? context.output_full_scale_lsb
                               : in == Limit::In::full_scale_ratio ? 1.0
@@ -131,19 +137,25 @@ const std::vector<Recipe>& rule_recipes() {
     const auto limit = [](std::string_view name, std::string_view unit, std::string_view help) {
         return Parameter{.name = name, .type = ParameterType::real, .unit = unit, .minimum = 0.0, .help = help};
     };
+    const auto derivable = [limit](std::string_view name, std::string_view unit, std::string_view help) {
+        Parameter parameter = limit(name, unit, help);
+        parameter.choices = {"derived"};
+        return parameter;
+    };
     static const std::vector<Recipe> recipes{
         {"error",
          "Response minus declared reference, over all samples; give at least one limit.",
          {
-             limit("max_lsb", "LSB", "Largest error allowed, in steps of the output format."),
-             limit("max_ratio", "of full scale", "Largest error allowed, as a fraction of the output's full scale."),
-             limit("max_unit", "unit", "Largest error allowed, in the unit of [signal]."),
-             limit("rms_lsb", "LSB", "Root mean square of the error allowed."),
-             limit("rms_ratio", "of full scale", "Root mean square of the error allowed."),
-             limit("rms_unit", "unit", "Root mean square of the error allowed."),
-             limit("bias_lsb", "LSB", "Mean of the error allowed, either sign."),
-             limit("bias_ratio", "of full scale", "Mean of the error allowed, either sign."),
-             limit("bias_unit", "unit", "Mean of the error allowed, either sign."),
+             derivable("max_lsb", "LSB", "Largest error allowed, in steps of the output format."),
+             derivable("max_ratio", "of full scale",
+                       "Largest error allowed, as a fraction of the output's full scale."),
+             derivable("max_unit", "unit", "Largest error allowed, in the unit of [signal]."),
+             derivable("rms_lsb", "LSB", "Root mean square of the error allowed."),
+             derivable("rms_ratio", "of full scale", "Root mean square of the error allowed."),
+             derivable("rms_unit", "unit", "Root mean square of the error allowed."),
+             derivable("bias_lsb", "LSB", "Mean of the error allowed, either sign."),
+             derivable("bias_ratio", "of full scale", "Mean of the error allowed, either sign."),
+             derivable("bias_unit", "unit", "Mean of the error allowed, either sign."),
              {.name = "min_snr_db",
               .type = ParameterType::real,
               .unit = "dB",
@@ -182,6 +194,10 @@ const std::vector<Recipe>& rule_recipes() {
               .help = "Folder of the baseline, below the root; \"baseline\" when left out."},
              limit("max_lsb", "LSB", "Largest difference allowed; none when left out: bit for bit."),
          }},
+        {"exact",
+         "The response equals what the declared arithmetic returns, bit for bit; needs all of it said "
+         "(docs/arithmetic.md).",
+         {}},
     };
     return recipes;
 }
@@ -192,10 +208,11 @@ Outcome<Rule> make_rule(std::string_view kind, const ParameterValues& values, co
     const Recipe* recipe = find_recipe(rule_recipes(), kind);
     if (recipe == nullptr)
         return refuse("kind", "there is no rule \"" + std::string(kind) + "\"",
-                      "use error, latency, response or unchanged");
+                      "use error, latency, response, unchanged or exact");
     if (kind == "error") return make_error_rule(values, *recipe, context);
     if (kind == "latency") return make_latency_rule(values, *recipe);
     if (kind == "unchanged") return make_unchanged_rule(values, *recipe, context);
+    if (kind == "exact") return Rule{ExactRule{}, {}};
     return make_response_rule(values, *recipe, context);
 }
 

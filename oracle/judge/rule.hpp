@@ -31,6 +31,7 @@ struct Limit {
     enum class In { lsb, full_scale_ratio, unit };
     double number = 0.0;
     In in = In::lsb;
+    bool is_derived = false;  ///< from the declared arithmetic, for the case and the channel; there is no number then
     bool operator==(const Limit&) const = default;
 };
 
@@ -65,8 +66,11 @@ struct UnchangedRule {
     std::string missing;                               ///< then: why, and what to do
 };
 
+/// The response equals what the declared arithmetic returns, bit for bit.
+struct ExactRule {};
+
 struct Rule {
-    std::variant<ErrorRule, LatencyRule, ResponseRule, UnchangedRule> kind;
+    std::variant<ErrorRule, LatencyRule, ResponseRule, UnchangedRule, ExactRule> kind;
     PlanPosition position;
 };
 

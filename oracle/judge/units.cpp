@@ -35,24 +35,4 @@ Limit::In natural_unit(const Signal& signal) {
     return signal.output.has_lsb() ? Limit::In::lsb : Limit::In::full_scale_ratio;
 }
 
-std::optional<double> allowed_rms(const Case& the_case, const Signal& signal) {
-    std::optional<double> smallest;
-    for (const Rule& rule : the_case.rules) {
-        const auto* error = std::get_if<ErrorRule>(&rule.kind);
-        if (error == nullptr) continue;
-        for (const auto& limit : {error->rms, error->largest}) {
-            if (!limit) continue;
-            const double value = value_of(*limit, signal);
-            smallest = smallest ? std::min(*smallest, value) : value;
-        }
-    }
-    return smallest;
-}
-
-double latency_sigma(const Case& the_case, const Signal& signal) {
-    const double step =
-        signal.output.has_lsb() ? lsb_value(signal.output) : std::ldexp(full_scale_value(signal.output), -24);
-    return std::max(step, allowed_rms(the_case, signal).value_or(0.0));
-}
-
 }  // namespace halflsb

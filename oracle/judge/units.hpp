@@ -18,11 +18,4 @@ std::string unit_name(Limit::In in, const Signal& signal);
 /// The unit in which errors are told when no limit chooses one: LSB, or full scale for f32.
 Limit::In natural_unit(const Signal& signal);
 
-/// The rms error a passing response may have, as a value of the output: of the case's error rules, the
-/// smallest rms limit; a largest limit bounds the rms too. None when neither is given.
-std::optional<double> allowed_rms(const Case& the_case, const Signal& signal);
-/// Sigma of the latency criterion (docs/methods.md): the larger of 1 output LSB and allowed_rms.
-/// f32 has no LSB: the spacing of floats below full scale, 2^-24, takes its place.
-double latency_sigma(const Case& the_case, const Signal& signal);
-
 }  // namespace halflsb

@@ -133,7 +133,7 @@ void read_filter_at(TableReader& reader, const PlanFacts& facts, double rate_hz,
         return;
     }
     if (the_case.rate_hz && facts.filters->depends_on_rate()) {
-        const Outcome<FilterChain>& design = facts.filters->at_rate(rate_hz, facts.signal->channels);
+        const Outcome<FilterChain>& design = facts.filters->at_rate(rate_hz, *facts.signal);
         if (!design) {
             reader.refuse(reader.place_of("rate_hz"),
                           "at " + number_text(rate_hz) + " Hz the filter has no design: " + design.error().problem,

@@ -2,8 +2,12 @@
 
 #include <algorithm>
 #include <cmath>
+#include <deque>
 
 #include "oracle/arithmetic/declared.hpp"
+#include "oracle/filters/rates.hpp"
+#include "runner/config/coefficient_files.hpp"
+#include "runner/config/plan_arithmetic.hpp"
 #include "runner/config/plan_words.hpp"
 
 namespace halflsb {
@@ -26,46 +30,6 @@ double half_step(const SampleFormat& output) {
     return output.has_lsb() ? lsb_value(output) / 2.0 : std::ldexp(1.0, -25);
 }
 
-/// A table of arithmetic and what it says.
-struct ArithmeticTable {
-    std::optional<TableReader> reader;
-    ParameterValues values;
-    StageArithmetic arithmetic;
-};
-
-/// `outer` is the top, or the reader of a [[filter]]. Without the table the defaults hold.
-ArithmeticTable read_arithmetic(ReadContext& context, TableReader& outer, std::string_view title,
-                                const StageArithmetic& defaults) {
-    ArithmeticTable read{std::nullopt, {}, defaults};
-    const TomlValue* table = outer.table("arithmetic", false);
-    if (table == nullptr) return read;
-    read.reader.emplace(context, *table, std::string(title), &outer);
-    read.values = read.reader->parameters(arithmetic_recipe());
-    read.reader->refuse_unknown_keys();
-    if (!read.reader->is_clean()) return read;
-    auto made = make_arithmetic(read.values, defaults);
-    if (made) {
-        read.arithmetic = *made;
-    } else {
-        read.reader->refuse(made.error());
-    }
-    return read;
-}
-
-/// At the key to blame: the stage's own, else that of its arithmetic, else that of [arithmetic].
-void refuse_stage(TableReader& reader, const Recipe& recipe, const ParameterValues& values, ArithmeticTable& own,
-                  ArithmeticTable& common, const Error& error) {
-    const bool is_of_arithmetic = find_parameter(arithmetic_recipe(), error.place) != nullptr &&
-                                  !(find_parameter(recipe, error.place) != nullptr && values.has(error.place));
-    if (is_of_arithmetic && own.reader && own.values.has(error.place)) {
-        own.reader->refuse(error);
-    } else if (is_of_arithmetic && common.reader && common.values.has(error.place)) {
-        common.reader->refuse(error);
-    } else {
-        reader.refuse(error);
-    }
-}
-
 class FilterReader {
 public:
     FilterReader(ReadContext& context, TableReader& top, const Signal* signal)
@@ -73,7 +37,7 @@ public:
 
     std::optional<PlanFilters> read() {
         const std::size_t before = context_.problems.count();
-        common_.emplace(read_arithmetic(context_, top_, "[arithmetic]", {}));
+        read_arithmetic(context_, top_, "[arithmetic]", {}, common_);
         const bool is_written = top_.entry("filter") != nullptr;
         const std::size_t before_tables = context_.problems.count();
         const auto tables = top_.tables("filter");
@@ -89,15 +53,18 @@ public:
             top_.refuse(top_.place_of("filter"), "the file has no [[filter]]",
                         "say what the firmware computes, at least one stage");
         }
+        if (context_.problems.count() == before && signal_ != nullptr) check_arithmetic();
         if (context_.problems.count() != before) return std::nullopt;
         return std::move(read_);
     }
 
 private:
     void read_stage(const TomlValue& table, std::size_t stage_count) {
-        TableReader reader(context_, table, "[[filter]]", &top_);
+        StageTables& tables = tables_.emplace_back(StageTables{TableReader(context_, table, "[[filter]]", &top_)});
+        TableReader& reader = tables.reader;
         const Recipe* recipe = reader.chosen_recipe("kind", filter_recipes());
         if (recipe == nullptr) return;
+        tables.recipe = recipe;
         PlanFilters::Stage stage{std::string(recipe->name), reader.parameters(*recipe), {}, false};
         if (recipe->name == unknown_kind) {
             if (stage_count > 1) {
@@ -112,22 +79,45 @@ private:
             read_.is_unknown = true;
             return;
         }
-        ArithmeticTable own = read_arithmetic(context_, reader, "[filter.arithmetic]", common_->arithmetic);
+        std::optional<CoefficientFiles> files;
+        if (reader.is_clean()) files.emplace(context_, reader, *recipe, stage.values);
+        read_arithmetic(context_, reader, "[filter.arithmetic]", common_.arithmetic, tables.own);
         reader.refuse_unknown_keys();
         if (!reader.is_clean()) return;
-        stage.arithmetic = own.arithmetic;
+        stage.arithmetic = tables.own.arithmetic;
+        if (files && !files->settle(stage.arithmetic, signal_, stage_count == 1)) return;
+        tables.values = stage.values;
         stage.depends_on_rate = is_in_time(*recipe, stage.values);
         if (signal_ == nullptr && stage.depends_on_rate) return;
         auto made = make_stage(recipe->name, stage.values,
-                               {signal_ == nullptr ? 1.0 : signal_->rate_hz, stage.arithmetic,
+                               {signal_ == nullptr ? 1.0 : stage_rate_hz(), stage.arithmetic,
                                 signal_ == nullptr ? most_channels : signal_->channels});
         if (made) made = checked_words(std::move(*made));
         if (made) {
             read_.chain.push_back(std::move(*made));
             read_.stages.push_back(std::move(stage));
         } else {
-            refuse_stage(reader, *recipe, stage.values, own, *common_, made.error());
+            tables.refuse(made.error(), common_);
         }
+    }
+
+    /// Of words that a stage has from [arithmetic] another one may have use.
+    void check_arithmetic() {
+        const std::size_t before = context_.problems.count();
+        for (std::size_t i = 0; i < read_.chain.size(); ++i) {
+            if (const auto error = misplaced_word(read_.chain[i], tables_[i].own.values))
+                tables_[i].refuse(*error, common_);
+        }
+        if (context_.problems.count() != before) return;
+        if (const auto problem = arithmetic_problem(read_.chain, *signal_))
+            tables_[problem->stage].refuse(problem->error, common_);
+    }
+
+    /// Corners of a stage are meant at the rate that the stages before it leave.
+    double stage_rate_hz() const {
+        double rate_hz = signal_->rate_hz;
+        for (const FilterStage& before : read_.chain) rate_hz = output_rate_hz(before, rate_hz);
+        return rate_hz;
     }
 
     /// Words between the stages that count in another kind of value would clip or lose everything.
@@ -148,7 +138,8 @@ private:
     ReadContext& context_;
     TableReader& top_;
     const Signal* signal_;
-    std::optional<ArithmeticTable> common_;
+    ArithmeticTable common_;
+    std::deque<StageTables> tables_;
     PlanFilters read_;
 };
 
@@ -158,21 +149,25 @@ bool PlanFilters::depends_on_rate() const {
     return std::any_of(stages.begin(), stages.end(), [](const Stage& stage) { return stage.depends_on_rate; });
 }
 
-const Outcome<FilterChain>& PlanFilters::at_rate(double rate_hz, int channels) const {
+const Outcome<FilterChain>& PlanFilters::at_rate(double rate_hz, const Signal& signal) const {
     if (const auto known = chains_.find(rate_hz); known != chains_.end()) return known->second;
     FilterChain made;
+    double stage_rate_hz = rate_hz;
     for (const Stage& stage : stages) {
-        auto at_rate = make_stage(stage.kind, stage.values, {rate_hz, stage.arithmetic, channels});
+        auto at_rate = make_stage(stage.kind, stage.values, {stage_rate_hz, stage.arithmetic, signal.channels});
+        if (at_rate) stage_rate_hz = output_rate_hz(*at_rate, stage_rate_hz);
         if (!at_rate) return chains_.emplace(rate_hz, at_rate.error()).first->second;
         made.push_back(std::move(*at_rate));
     }
+    if (const auto problem = arithmetic_problem(made, signal))
+        return chains_.emplace(rate_hz, problem->error).first->second;
     return chains_.emplace(rate_hz, std::move(made)).first->second;
 }
 
 std::optional<std::int64_t> PlanFilters::flush_samples_at(double rate_hz, const Signal& signal) const {
     if (const auto known = flushes_.find(rate_hz); known != flushes_.end()) return known->second;
     std::optional<std::int64_t> most = 0;
-    const Outcome<FilterChain>& design = at_rate(rate_hz, signal.channels);
+    const Outcome<FilterChain>& design = at_rate(rate_hz, signal);
     const double full_scale = full_scale_value(signal.input) * std::fabs(signal.output_per_input);
     const bool is_alike =
         std::all_of(chain.begin(), chain.end(), [](const FilterStage& s) { return s.channels.empty(); });

@@ -31,7 +31,7 @@ public:
     /// Whether another rate makes another design.
     bool depends_on_rate() const;
     /// The chain at the rate of a case, or the error of the first stage that has none.
-    const Outcome<FilterChain>& at_rate(double rate_hz, int channels) const;
+    const Outcome<FilterChain>& at_rate(double rate_hz, const Signal& signal) const;
     /// Zeros that leave nothing of what went before, on the channel that needs the most; nullopt: no number does.
     std::optional<std::int64_t> flush_samples_at(double rate_hz, const Signal& signal) const;
 

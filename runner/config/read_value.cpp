@@ -4,7 +4,6 @@
 
 #include "runner/config/bands.hpp"
 #include "runner/config/nested_stimuli.hpp"
-#include "runner/config/number_file.hpp"
 #include "runner/config/reader.hpp"
 #include "runner/config/signal_file.hpp"
 #include "runner/config/value_text.hpp"
@@ -165,21 +164,6 @@ std::optional<std::string_view> named_bytes(const Parameter& parameter, const To
     return std::nullopt;
 }
 
-std::optional<std::vector<double>> file_numbers_of(const Parameter& parameter, const TomlValue& value,
-                                                   ReadContext& context) {
-    const auto path = text_of(parameter, value, context);
-    if (!path) return std::nullopt;
-    auto bytes = named_bytes(parameter, value, *path, context);
-    if (!bytes) return std::nullopt;
-    const SourceText source(context.root + "/" + *path, std::string(*bytes));
-    auto numbers = read_number_file(source, parameter);
-    if (const auto* text = std::get_if<std::string>(&numbers)) {
-        context.problems.add_rendered(value.place, *text);
-        return std::nullopt;
-    }
-    return std::get<std::vector<double>>(std::move(numbers));
-}
-
 std::optional<std::shared_ptr<const SignalFile>> signal_file_of(const Parameter& parameter, const TomlValue& value,
                                                                 ReadContext& context) {
     const auto path = text_of(parameter, value, context);
@@ -215,6 +199,8 @@ std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlE
             if (!number_of(parameter, value, std::string(parameter.name), context)) return std::nullopt;
             return value.integer;
         case ParameterType::real:
+            if (value.kind == TomlValue::Kind::text && !parameter.choices.empty())
+                return as_value(choice_of(parameter, value, context));
             return as_value(number_of(parameter, value, std::string(parameter.name), context));
         case ParameterType::text:
             return as_value(text_of(parameter, value, context));
@@ -226,7 +212,8 @@ std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlE
         case ParameterType::sections:
             return as_value(sections_of(parameter, value, context));
         case ParameterType::file:
-            return as_value(file_numbers_of(parameter, value, context));
+            // The path: what the file's numbers mean is said by other words of the table (coefficient_files.hpp).
+            return as_value(text_of(parameter, value, context));
         case ParameterType::bands:
             if (value.kind != TomlValue::Kind::array) {
                 refuse_type(parameter, value, parameter.name, wanted_text(parameter.type), context);

@@ -23,8 +23,11 @@ std::string type_text(const Parameter& parameter) {
     switch (parameter.type) {
         case ParameterType::integer:
             return "whole number";
-        case ParameterType::real:
-            return "number";
+        case ParameterType::real: {
+            std::string text = "number";
+            for (const std::string_view word : parameter.choices) text += " or `\"" + std::string(word) + "\"`";
+            return text;
+        }
         case ParameterType::text:
             return "text";
         case ParameterType::choice: {

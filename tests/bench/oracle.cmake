@@ -1,2 +1,2 @@
-add_executable(oracle_bench ${CMAKE_CURRENT_LIST_DIR}/oracle_bench.cpp)
-target_link_libraries(oracle_bench PRIVATE filters measure)
+add_executable(oracle_bench ${CMAKE_CURRENT_LIST_DIR}/oracle_bench.cpp ${CMAKE_CURRENT_LIST_DIR}/twin_jobs.cpp)
+target_link_libraries(oracle_bench PRIVATE arithmetic measure)

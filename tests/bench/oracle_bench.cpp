@@ -8,10 +8,12 @@
 #include <string>
 #include <vector>
 
-#include "oracle/filters/filter.hpp"
+#include "oracle/filters/fir.hpp"
+#include "oracle/filters/partitioned_fir.hpp"
 #include "oracle/measure/error.hpp"
 #include "oracle/measure/lag.hpp"
 #include "oracle/measure/response.hpp"
+#include "tests/bench/twin_jobs.hpp"
 
 using namespace halflsb;
 
@@ -60,6 +62,23 @@ int main(int count, char** arguments) {
     for (const std::size_t taps : {16u, 64u, 256u}) {
         time_filter("fir-" + std::to_string(taps), Fir{std::vector<double>(taps, 1.0 / static_cast<double>(taps))});
     }
+    // Both forms of the same FIR: where the one becomes faster is where make_filter should change over.
+    for (const std::size_t taps : {512u, 1024u, 2048u, 4096u, 16384u, 65536u}) {
+        const Fir design{std::vector<double>(taps, 1.0 / static_cast<double>(taps))};
+        FirFilter direct(design);
+        PartitionedFirFilter partitioned(design);
+        const std::size_t few = std::min<std::size_t>(length, 200000);
+        for (const auto& [name, filter] :
+             {std::pair<const char*, Filter*>{"direct-fir-", &direct}, {"partitioned-fir-", &partitioned}}) {
+            const double seconds = seconds_of([&] {
+                filter->reset();
+                for_blocks(few, [&](std::size_t first, std::size_t n) {
+                    filter->process(std::span(x).subspan(first, n), std::span(y).subspan(first, n));
+                });
+            });
+            std::printf("%s%zu %.9f\n", name, taps, seconds * static_cast<double>(length) / static_cast<double>(few));
+        }
+    }
     const BiquadSection section{0.0675, 0.1349, 0.0675, -1.143, 0.4128};
     time_filter("biquads-1", BiquadCascade{{section}});
     time_filter("biquads-4", BiquadCascade{{section, section, section, section}});
@@ -70,6 +89,19 @@ int main(int count, char** arguments) {
     std::int64_t zeros = 0;
     const double flush_seconds = seconds_of([&] { zeros += flush_samples({slow}, 1.0, 0x1p-16).value_or(0); });
     std::printf("flush-1e6 %.9f\n", zeros > 0 ? flush_seconds : 0.0);
+
+    for (const TwinJob& job : twin_jobs()) {
+        const auto twin = job.make();
+        const auto codes = q15_codes(x);
+        std::vector<Code> returned(length);
+        const double seconds = seconds_of([&] {
+            twin->reset();
+            for_blocks(length, [&](std::size_t first, std::size_t n) {
+                twin->process(std::span(codes).subspan(first, n), std::span(returned).subspan(first, n));
+            });
+        });
+        std::printf("%s %.9f\n", job.name.c_str(), seconds);
+    }
     time_filter("biquads-4", BiquadCascade{{section, section, section, section}});
 
     // y is the last filter's output now: the same record the Python side makes for the measures.

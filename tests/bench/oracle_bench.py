@@ -83,6 +83,11 @@ def jobs(x):
     yield "moving-average-1000", "cumsum", lambda: moving_average_by_cumsum(x, 1000)
     for taps in (16, 64, 256):
         yield f"fir-{taps}", "lfilter", lambda taps=taps: signal.lfilter(np.full(taps, 1 / taps), 1, x)
+    for taps in (512, 1024, 2048, 4096, 16384, 65536):
+        # oaconvolve needs the whole record at once; ours gives each output with its input.
+        job = lambda taps=taps: signal.oaconvolve(x, np.full(taps, 1 / taps))
+        yield f"direct-fir-{taps}", "oaconvolve", job
+        yield f"partitioned-fir-{taps}", "oaconvolve", job
     for count in (1, 4):
         yield f"biquads-{count}", "sosfilt", lambda count=count: signal.sosfilt([section] * count, x)
     for delay in (24, 4000):
@@ -110,6 +115,12 @@ def main():
         theirs = seconds_of(job)
         per_sample = 1e9 / length
         print(f"{name:<22}{ours[name] * per_sample:>11.2f} ns{theirs * per_sample:>11.2f} ns{theirs / ours[name]:>8.1f}  {whom}")
+    print(f"{'twin':<30}{'per sample':>14}{'of the reference':>20}")
+    for name in ours:
+        if not name.startswith("twin-"):
+            continue
+        reference = next(each for each in sorted(ours, key=len, reverse=True) if name.endswith(each) and each != name)
+        print(f"{name:<30}{ours[name] * 1e9 / length:>11.2f} ns{ours[name] / ours[reference]:>19.1f}x")
 
 
 main()

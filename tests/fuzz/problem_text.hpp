@@ -19,8 +19,19 @@ inline bool take_position(std::string_view& text) {
     return true;
 }
 
+/// FILE: byte N: problem, and a remedy: of a file that has no lines.
+inline bool is_about_bytes(std::string_view message, const std::string& file) {
+    const std::string start = file + ": byte ";
+    if (!message.starts_with(start)) return false;
+    message.remove_prefix(start.size());
+    const std::size_t digits = message.find_first_not_of("0123456789"), end = message.find("\n  ");
+    return digits > 0 && digits < message.size() && message[digits] == ':' && end != std::string_view::npos &&
+           end > digits + 2 && message.size() > end + 3 && message.find('\n', end + 1) == std::string_view::npos;
+}
+
 /// "" or what is wrong with the form of a message about `file`.
 inline std::string fault_of_form(std::string_view message, const std::string& file) {
+    if (is_about_bytes(message, file)) return "";
     if (!message.starts_with(file + ":")) return "it does not begin with the file";
     message.remove_prefix(file.size() + 1);
     if (!take_position(message) || !take_position(message)) return "it has no line and column";

@@ -1,10 +1,16 @@
-// Runs filters for filters_test.py. A case is: how many stages, for each its kind and its list of numbers, a list
-// of frequencies in cycles a sample, a list of input samples, and the ratio half_step / full_scale of the flush.
-// Kinds: 0 moving average, points; 1 FIR, taps; 2 biquads, b0 b1 b2 a1 a2 of each section; and, by the words of a
-// plan at 1000 samples a second, 3 comb, delay direct forward feedback; 4 one-pole, way value; 5 DC blocker, way
-// value gain; 6 notch, frequency q. The answer is: the output samples, real and imaginary part at each frequency,
-// the L1 norm, the largest pole radius, the samples of the flush (-1: none).
-#include "oracle/filters/filter.hpp"
+// Runs filters for filters_test.py, recursions_test.py and rates_test.py. A case is: how many stages, for each its kind
+// and its list of numbers, a list of frequencies in cycles a sample, a list of input samples, and the ratio half_step /
+// full_scale of the flush. Kinds: 0 moving average, points; 1 FIR, taps; 2 biquads, b0 b1 b2 a1 a2 of each section;
+// and, by the words of a plan at 1000 samples a second, 3 comb, delay direct forward feedback; 4 one-pole, way value; 5
+// DC blocker, way value gain; 6 notch, frequency q; by their numbers again 7 recursion, how many b, then b and a; 8
+// median, points; 9 CIC decimator and 10 CIC interpolator, order factor delay shift (-1: none); 11 FIR decimator and 12
+// FIR interpolator, factor, taps. 100 is added to the kind for a start with the first sample, 200 for one that grows.
+// The answer is: the output samples, real and imaginary part at each frequency, the L1 norm, the largest pole radius,
+// the samples of the flush (-1: none); of a lone recursion before all that whether it is stable (if not, that and its
+// radius are all), and behind it the bounds of a plain recursion's loss and of its own.
+#include "oracle/filters/rates.hpp"
+#include "oracle/filters/recursion.hpp"
+#include "oracle/filters/stability.hpp"
 #include "tests/reference/binary_cases.hpp"
 
 using namespace halflsb;
@@ -56,9 +62,30 @@ FilterStage notch(const std::vector<double>& list) {
     return made("notch", values);
 }
 
-FilterStage read_stage() {
-    const auto kind = static_cast<int>(number());
-    std::vector<double> list = numbers();
+FilterDesign recursion(const std::vector<double>& list) {
+    const auto middle = list.begin() + 1 + static_cast<std::ptrdiff_t>(list.at(0));
+    return Recursion{{list.begin() + 1, middle}, {middle, list.end()}};
+}
+
+template <class Cic>
+FilterDesign cic(const std::vector<double>& list) {
+    Cic design{static_cast<int>(list.at(0)), static_cast<int>(list.at(1)), static_cast<int>(list.at(2)), {}};
+    if (list.at(3) >= 0.0) design.shift_bits = static_cast<int>(list[3]);
+    return design;
+}
+
+template <class FirWithRate>
+FilterDesign fir_with_rate(const std::vector<double>& list) {
+    return FirWithRate{{list.begin() + 1, list.end()}, static_cast<int>(list.at(0))};
+}
+
+FilterStage stage_of(int kind, std::vector<double> list) {
+    if (kind == 7) return {recursion(list), std::nullopt};
+    if (kind == 8) return {Median{static_cast<int>(list.at(0))}, std::nullopt};
+    if (kind == 9) return {cic<CicDecimator>(list), std::nullopt};
+    if (kind == 10) return {cic<CicInterpolator>(list), std::nullopt};
+    if (kind == 11) return {fir_with_rate<FirDecimator>(list), std::nullopt};
+    if (kind == 12) return {fir_with_rate<FirInterpolator>(list), std::nullopt};
     if (kind == 0) return {MovingAverage{static_cast<int>(list.at(0))}, std::nullopt};
     if (kind == 1) return {Fir{std::move(list)}, std::nullopt};
     if (kind == 3) return comb(list);
@@ -72,6 +99,17 @@ FilterStage read_stage() {
     return {std::move(cascade), std::nullopt};
 }
 
+FilterStage read_stage() {
+    const auto kind = static_cast<int>(number());
+    FilterStage stage = stage_of(kind % 100, numbers());
+    stage.initial = static_cast<Initial>(kind / 100);
+    return stage;
+}
+
+const Recursion* lone_recursion(const FilterChain& chain) {
+    return chain.size() == 1 ? std::get_if<Recursion>(&chain.front().design) : nullptr;
+}
+
 }  // namespace
 
 int main() {
@@ -79,15 +117,25 @@ int main() {
         FilterChain chain;
         while (chain.size() < static_cast<std::size_t>(stages)) chain.push_back(read_stage());
         const std::vector<double> frequencies = numbers();
-        std::vector<double> samples = numbers();
+        const std::vector<double> samples = numbers();
         const double half_step = number();
-        make_filter(chain)->process(samples, samples);
-        write_numbers(samples);
+        const Recursion* alone = lone_recursion(chain);
+        if (alone != nullptr) {
+            const bool stable = is_stable(*alone);
+            write_numbers({stable ? 1.0 : 0.0});
+            if (!stable) write_numbers({pole_radius(*alone)});
+            if (!stable) continue;
+        }
+        const auto filter = make_filter(chain);
+        std::vector<double> out(filter->outputs_for(samples.size()));
+        filter->process(samples, out);
+        write_numbers(out);
         for (const double f : frequencies) {
             const auto h = response_at(chain, f);
             write_numbers({h.real(), h.imag()});
         }
         const auto flush = flush_samples(chain, 1.0, half_step);
         write_numbers({l1_norm(chain), largest_pole_radius(chain), flush ? static_cast<double>(*flush) : -1.0});
+        if (alone != nullptr) write_numbers({recursion_loss(*alone), carried_recursion_loss(*alone)});
     }
 }

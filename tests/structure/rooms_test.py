@@ -13,7 +13,7 @@ ORACLE = ["oracle/filters", "oracle/arithmetic", "oracle/measure", "oracle/judge
 # room: (rooms it sees directly, outside headers it may include besides the standard library)
 ROOMS = {
     "stimuli": ([], []),
-    "oracle/filters": (["stimuli"], []),
+    "oracle/filters": (["stimuli"], ["kissfft/"]),
     "oracle/arithmetic": (["oracle/filters"], []),
     "oracle/measure": (["stimuli"], ["kissfft/"]),
     "oracle/judge": (["oracle/measure", "oracle/arithmetic"], []),

@@ -123,6 +123,9 @@ private:
     }
 
     std::string integer_for(const Parameter& parameter) {
+        // Of the five numbers that a file of coefficients has here.
+        if (parameter.name == "file_count") return parameter.unit == "taps" ? "5" : "1";
+        if (parameter.name.starts_with("file_padding")) return chance(50) ? "0" : "1";
         double number = number_for(parameter);
         number = std::min(std::max(number, parameter.minimum), parameter.maximum);
         return std::to_string(static_cast<std::int64_t>(number));
@@ -187,6 +190,8 @@ private:
             case ParameterType::real:
                 return toml_real(number_for(parameter));
             case ParameterType::text:
+                if (parameter.name == "file_array") return "\"h\"";
+                if (parameter.name == "file_layout") return "\"b0 b1 b2 a1 a2\"";
                 return text();
             case ParameterType::choice:
                 // A flush that never ends is found out only after 2^24 samples: seldom asked for.
@@ -198,8 +203,10 @@ private:
                 return list(1 + below(3), [&] { return section(); });
             case ParameterType::bands:
                 return list(1, [&] { return band(); });
-            case ParameterType::file:
-                return file(chance(50) ? "0.5\n0.25\n0.25\n-0.5\n0.25\n" : "1\n0\n0\n0.5\n0\n", ".txt");
+            case ParameterType::file: {
+                const std::string five = chance(50) ? "0.5, 0.25, 0.25, -0.5, 0.25" : "1, 0, 0, 0.5, 0";
+                return chance(50) ? file("double h[] = {" + five + "};\n", ".h") : file(five + "\n", ".txt");
+            }
             case ParameterType::integers:
                 return "[1]";
             case ParameterType::signal_file:
@@ -216,6 +223,18 @@ private:
             if (wanted(parameter))
                 table.keys.push_back(
                     {std::string(parameter.name), value_for(parameter), &parameter, parameter.required});
+        }
+    }
+
+    /// Words about a file of coefficients need the file, which takes the place of the coefficients.
+    void add_named_file(Table& table) {
+        const auto is_about_file = [](const Key& key) { return key.name.starts_with("file_"); };
+        if (std::none_of(table.keys.begin(), table.keys.end(), is_about_file)) return;
+        for (const std::string what : {"taps", "sections"}) {
+            const Parameter* parameter = find_parameter(*table.recipe, what + "_file");
+            if (parameter == nullptr) continue;
+            std::erase_if(table.keys, [&](const Key& key) { return key.name == what || key.name == what + "_file"; });
+            table.keys.push_back({what + "_file", value_for(*parameter), parameter, false});
         }
     }
 
@@ -236,6 +255,7 @@ private:
         for (std::size_t count = below(std::min<std::size_t>(others.size(), 5) + 1); count > 0; count /= 2) {
             table = base;
             table.keys.insert(table.keys.end(), others.begin(), others.begin() + static_cast<std::ptrdiff_t>(count));
+            add_named_file(table);
             if (taken(table)) return true;
         }
         table = base;
@@ -243,6 +263,7 @@ private:
         for (const Key& key : others) {
             table = base;
             table.keys.push_back(key);
+            add_named_file(table);
             if (taken(table)) return true;
         }
         return false;

@@ -33,6 +33,7 @@ std::vector<Named> every_kind() {
         {"comb forward of 1500", {stage(Comb{1500, 1.0, 0.5, 0.0})}},
         {"one-pole", {stage(BiquadCascade{{{0x1p-6, 0.0, 0.0, 0x1p-6 - 1.0, 0.0}}})}},
         {"DC blocker", {stage(BiquadCascade{{{1.0, -1.0, 0.0, -0.995, 0.0}}})}},
+        {"recursion", {stage(Recursion{{0.1, 0.2, 0.3}, {1.0, -1.5, 0.7, -0.1}})}},
         {"all kinds",
          {stage(Fir{noise(33, 33)}), stage(low), stage(MovingAverage{10}), stage(high),
           stage(Comb{300, 1.0, 0.3, -0.4})}},

@@ -230,3 +230,51 @@ TEST_CASE("admission: of an unknown filter no reference is asked", "[judge]") {
     plan.filter_is_unknown = true;
     CHECK(refusals(plan, the_case).empty());
 }
+
+TEST_CASE("admission: a median has no response, but an error and a latency", "[judge]") {
+    Plan plan = test::moving_average_plan();
+    const auto noise = values({{"level_ratio", 0.5}, {"length_samples", std::int64_t{8192}}});
+    const Rule response = test::rule(plan, "response", values({{"bands", Rows{{50.0, 100.0, -1.0, 1.0}}}}));
+    const Rule latency = test::rule(plan, "latency", values({{"latency_samples", std::int64_t{0}}}));
+    const Rule error = test::rule(plan, "error", values({{"max_lsb", 1.0}}));
+    CHECK(refused(plan, "noise", noise, response).empty());
+    FilterStage median;
+    median.design = Median{5};
+    plan.filter.push_back(median);
+    const auto found = refused(plan, "noise", noise, response);
+    REQUIRE(found.size() == 1);
+    CHECK(found[0].position.line == 20);
+    CHECK(found[0].problem ==
+          "case \"a case\" asks for the response of a filter with a median in it, which is not linear and has none");
+    CHECK(found[0].remedy == "leave the rule out; rules about error, latency and unchanged hold");
+    CHECK(refused(plan, "noise", noise, latency).empty());
+    CHECK(refused(plan, "noise", noise, error).empty());
+    // A channel that does not pass the median has a response; a case that drives the other one has none.
+    plan.signal.channels = 2;
+    plan.filter.back().channels = {2};
+    Case one = test::a_case(plan, "noise", noise, {response});
+    one.channel = 1;
+    CHECK(refusals(plan, one).empty());
+    one.channel = 2;
+    CHECK(refusals(plan, one).size() == 1);
+}
+
+TEST_CASE("admission: a filter that changes the rate cannot be judged sample by sample", "[judge]") {
+    Plan plan = test::moving_average_plan();
+    FilterStage stage;
+    stage.design = FirInterpolator{{0.5, 0.5, 0.5}, 3};
+    plan.filter.push_back(stage);
+    stage.design = CicDecimator{2, 6, 1, {}};
+    plan.filter.push_back(stage);
+    const auto noise = values({{"level_ratio", 0.5}, {"length_samples", std::int64_t{8192}}});
+    const auto found = refused(plan, "noise", noise, test::implicit_latency());
+    REQUIRE(found.size() == 1);
+    CHECK(found[0].position.line == 10);
+    CHECK(found[0].problem ==
+          "the filter of case \"a case\" changes the sample rate, 1 out for 2 in, and its rules compare sample with "
+          "sample");
+    CHECK(found[0].remedy == "describe the filter up to where the rate changes, and let the board return that");
+    // As many out as in, yet two inputs and two outputs go together.
+    std::get<CicDecimator>(plan.filter.back().design).factor = 3;
+    CHECK(refused(plan, "noise", noise, test::implicit_latency()).size() == 1);
+}

@@ -85,5 +85,5 @@ TEST_CASE("rule: bands must run forwards, stay below Nyquist and not cross", "[j
 
 TEST_CASE("rule: an unknown kind names those there are", "[judge]") {
     CHECK(to_text(refused("speed", {})) ==
-          "kind: there is no rule \"speed\"\n  use error, latency, response or unchanged");
+          "kind: there is no rule \"speed\"\n  use error, latency, response, unchanged or exact");
 }

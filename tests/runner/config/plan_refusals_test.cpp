@@ -411,15 +411,20 @@ TEST_CASE("plan: a file that it names is confined, and its own lines are shown",
         return plan_problems(named, files);
     };
     CHECK(said("1\n").empty());
-    const std::string remedy = "  write one number a line, with a decimal point; # starts a comment\n";
-    CHECK(said("0.5\n 0,25\n") == "./taps.txt:2:2: \"0,25\" is not one number\n     0,25\n     ^\n" + remedy);
-    CHECK(said("0.5 0.25\n") == "./taps.txt:1:1: \"0.5 0.25\" is not one number\n    0.5 0.25\n    ^\n" + remedy);
+    const std::string remedy =
+        "  write one number a line, or the same count on every line between commas; with a decimal point; # starts a "
+        "comment\n";
+    CHECK(said("0.5\n 0,25\n") ==
+          "./taps.txt:2:2: \"0,25\" is not one number: has it a decimal comma?\n     0,25\n     ^\n  write numbers with "
+          "a decimal point, 0.5\n");
+    CHECK(said("0.5 0.25\n").empty());
     CHECK(said("0x10\n") == "./taps.txt:1:1: \"0x10\" is not one number\n    0x10\n    ^\n" + remedy);
     CHECK(said("+-1\n") == "./taps.txt:1:1: \"+-1\" is not one number\n    +-1\n    ^\n" + remedy);
     CHECK(said("nan\n") == "./taps.txt:1:1: \"nan\" is no finite number\n    nan\n    ^\n" + remedy);
     CHECK(said("1e400\n") == "./taps.txt:1:1: \"1e400\" is not one number\n    1e400\n    ^\n" + remedy);
-    CHECK(said("1\n2e9\n") ==
-          "./taps.txt:2:1: \"2e9\" is out of range\n    2e9\n    ^\n  give numbers from -1000000000 to 1000000000\n");
+    CHECK(said("0.5\n2e9\n") ==
+          "./taps.txt:2:1: 2000000000 is no coefficient\n    2e9\n    ^\n  give numbers from -1000000000 to "
+          "1000000000\n");
     CHECK(said("# none\n") == "./taps.txt:1:1: there is no number in the file\n    # none\n    ^\n" + remedy);
     CHECK(said("") == "./taps.txt:1:1: there is no number in the file\n    \n    ^\n" + remedy);
     CHECK(said("1\n\xFF\n") ==

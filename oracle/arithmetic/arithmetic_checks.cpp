@@ -1,0 +1,221 @@
+#include "oracle/arithmetic/arithmetic_checks.hpp"
+
+#include <algorithm>
+#include <cmath>
+
+#include "oracle/arithmetic/family.hpp"
+#include "oracle/filters/coefficients.hpp"
+#include "oracle/filters/rates.hpp"
+#include "stimuli/number_text.hpp"
+
+namespace halflsb {
+
+namespace {
+
+Error refuse(std::string_view word, std::string problem, std::string remedy) {
+    return {ErrorKind::input, std::string(word), std::move(problem), std::move(remedy)};
+}
+
+std::string text_of(int number) { return std::to_string(number); }
+
+/// A coefficient as the plan's reader knows it, with the sign in which it is stored.
+struct NamedCoefficient {
+    std::string name;
+    double value = 0.0;
+};
+
+std::vector<NamedCoefficient> coefficients_of(const DescribedStage& described) {
+    std::vector<NamedCoefficient> all;
+    const bool added = described.feedback_coefficients == FeedbackCoefficients::added;
+    const auto feedback = [&](std::string name, double a) {
+        all.push_back({added ? "-" + name : std::move(name), added ? -a : a});
+    };
+    const FilterDesign& design = described.stage.design;
+    const auto list = [&](const char* name, const std::vector<double>& numbers) {
+        for (std::size_t k = 0; k < numbers.size(); ++k)
+            all.push_back({name + ("[" + std::to_string(k) + "]"), numbers[k]});
+    };
+    if (const auto* fir = std::get_if<Fir>(&design)) {
+        list("taps", fir->taps);
+    } else if (const auto* decimator = std::get_if<FirDecimator>(&design)) {
+        list("taps", decimator->taps);
+    } else if (const auto* interpolator = std::get_if<FirInterpolator>(&design)) {
+        list("taps", interpolator->taps);
+    } else if (const auto* recursion = std::get_if<Recursion>(&design)) {
+        list("b", recursion->b);
+        for (std::size_t k = 1; k < recursion->a.size(); ++k) feedback("a[" + std::to_string(k) + "]", recursion->a[k]);
+    } else if (const auto* comb = std::get_if<Comb>(&design)) {
+        all = {{"direct", comb->direct}, {"forward", comb->forward}};
+        feedback("feedback", comb->feedback);
+    } else if (const auto* cascade = std::get_if<BiquadCascade>(&design)) {
+        if (family_of(described.stage) == Family::one_pole) {
+            const double k = cascade->sections.front().b0;
+            all.push_back({"coefficient", k});
+            if (described.structure == Structure::direct_1) all.push_back({"1 - coefficient", 1.0 - k});
+            return all;
+        }
+        for (std::size_t i = 0; i < cascade->sections.size(); ++i) {
+            const BiquadSection& s = cascade->sections[i];
+            const std::string of = cascade->sections.size() == 1 ? "" : " of section " + std::to_string(i + 1);
+            all.push_back({"b0" + of, s.b0});
+            all.push_back({"b1" + of, s.b1});
+            all.push_back({"b2" + of, s.b2});
+            feedback("a1" + of, s.a1);
+            feedback("a2" + of, s.a2);
+        }
+    } else if (const auto* average = std::get_if<MovingAverage>(&design)) {
+        if (described.division == Division::reciprocal) all.push_back({"1 / points", 1.0 / average->points});
+    }
+    return all;
+}
+
+/// Fraction bits with which the whole list fits words of `bits`; nullopt: not even whole numbers do.
+std::optional<int> fitting_fraction_bits(const std::vector<NamedCoefficient>& all, int bits, int below,
+                                         Rounding rounding) {
+    for (int fraction = below - 1; fraction >= 0; --fraction) {
+        const double limit = std::ldexp(1.0, bits - 1 - fraction);
+        const bool fits = std::all_of(all.begin(), all.end(), [&](const NamedCoefficient& c) {
+            const double stored = rounded_coefficient(c.value, fraction, rounding);
+            return stored >= -limit && stored < limit;
+        });
+        if (fits) return fraction;
+    }
+    return std::nullopt;
+}
+
+std::optional<Error> coefficient_outside(const DescribedStage& described) {
+    if (!described.coefficients_are_said) return std::nullopt;
+    const auto& said_bits = described.stage.arithmetic.coefficient_bits;
+    const int bits = said_bits.value_or(64), fraction = described.coefficient_fraction_bits;
+    const Rounding rounding = described.stage.arithmetic.coefficient_rounding;
+    // A shift stores nothing: its 1 is in the program.
+    if (is_by_shift(described.stage)) return std::nullopt;
+    const std::vector<NamedCoefficient> all = coefficients_of(described);
+    const double limit = std::ldexp(1.0, bits - 1 - fraction);
+    for (const NamedCoefficient& c : all) {
+        const double stored = rounded_coefficient(c.value, fraction, rounding);
+        if (stored >= -limit && stored < limit) continue;
+        const auto fitting = fitting_fraction_bits(all, bits, fraction, rounding);
+        return refuse(said_bits ? "coefficient_bits" : "coefficient_fraction_bits",
+                      c.name + " = " + number_text(c.value) + " does not fit " + text_of(bits) + "-bit words with " +
+                          text_of(fraction) + " fraction bits",
+                      fitting ? "coefficient_fraction_bits = " + text_of(*fitting) + " would do"
+                              : "give coefficient_bits that hold it");
+    }
+    return std::nullopt;
+}
+
+/// The width that holds `largest` (a size, in steps of the accumulator).
+int bits_for(double largest) {
+    int bits = 2;
+    while (std::ldexp(1.0, bits - 1) < largest) ++bits;
+    return bits;
+}
+
+std::optional<Error> accumulator_too_narrow(const DescribedStage& described) {
+    const Family family = family_of(described.stage);
+    if (described.accumulator_bits == wide_bits || family == Family::median || family == Family::cic)
+        return std::nullopt;
+    const Word& in = described.in.word;
+    const bool is_average = family == Family::average;
+    if (in.bits == wide_bits || (!is_average && !described.coefficients_are_said)) return std::nullopt;
+    const double largest_input = std::ldexp(1.0, in.bits - 1);
+    double largest = largest_input;
+    std::string what = "one sample";
+    if (!is_average) {
+        const int terms = in.fraction_bits + described.coefficient_fraction_bits;
+        const bool is_recursive = family != Family::fir;
+        const Word& target = is_recursive ? described.state : described.out.word;
+        const int most = is_recursive
+                             ? std::max(in.fraction_bits, target.fraction_bits) + described.coefficient_fraction_bits
+                             : terms;
+        const int fraction = accumulator_fraction_bits_of(described, most, target.fraction_bits);
+        largest = 0.0;
+        for (const NamedCoefficient& c : coefficients_of(described)) {
+            const double product = std::ldexp(std::fabs(c.value), fraction - in.fraction_bits) * largest_input;
+            if (product <= largest) continue;
+            largest = product;
+            what = "one product, that of " + c.name + " = " + number_text(c.value);
+        }
+    }
+    if (largest <= std::ldexp(1.0, described.accumulator_bits - 1)) return std::nullopt;
+    const int enough = bits_for(largest);
+    return refuse("accumulator_bits",
+                  "an accumulator of " + text_of(described.accumulator_bits) + " bits cannot hold " + what,
+                  enough <= 64 ? "accumulator_bits = " + text_of(enough) + " would do for one; a sum needs more"
+                               : "store fewer fraction bits, or give rounding_at = \"product\"");
+}
+
+std::optional<Error> saving_without_loss(const DescribedStage& described) {
+    if (!described.fraction_saving) return std::nullopt;
+    if (described.structure == Structure::transposed_2) {
+        return refuse("fraction_saving", "transposed-2 saves no fraction: its states hold it already",
+                      "leave fraction_saving out, or give another structure");
+    }
+    if (described.rounding_at == RoundingAt::product) {
+        return refuse("fraction_saving", "where each product is rounded no sum has a fraction to save",
+                      "leave fraction_saving out, or give rounding_at = \"sum\"");
+    }
+    if (family_of(described.stage) == Family::one_pole && described.structure != Structure::direct_1) {
+        return refuse("fraction_saving", "a one-pole of this structure saves no fraction",
+                      "give structure = \"direct-1\", or a state of more fraction bits");
+    }
+    return std::nullopt;
+}
+
+std::optional<Error> division_that_cannot_be(const DescribedStage& described) {
+    const auto* average = std::get_if<MovingAverage>(&described.stage.design);
+    if (average == nullptr) return std::nullopt;
+    const int points = average->points;
+    if (described.division == Division::shift && (points & (points - 1)) != 0) {
+        return refuse("division", text_of(points) + " points are no power of two, so no shift divides by them",
+                      "give division = \"divide\" or \"reciprocal\"");
+    }
+    if (described.division != Division::reciprocal || described.number == NumberKind::float32) return std::nullopt;
+    if (!described.stage.coefficient_fraction_bits) {
+        return refuse("division", "nothing says how finely the reciprocal of points is stored",
+                      "give coefficient_fraction_bits");
+    }
+    if (stored_coefficient(described, 1.0 / points) == 0) {
+        return refuse("coefficient_fraction_bits", "the reciprocal of " + text_of(points) + " points is stored as 0",
+                      "coefficient_fraction_bits = " + text_of(bits_for(points) + 6) + " would do");
+    }
+    return std::nullopt;
+}
+
+/// Hogenauer (1981), equation 11: what the registers must hold so that their wrapping cancels out.
+std::optional<Error> registers_too_narrow(const DescribedStage& described) {
+    int growth = -1;
+    if (const auto* decimator = std::get_if<CicDecimator>(&described.stage.design)) growth = growth_bits(*decimator);
+    if (const auto* interpolator = std::get_if<CicInterpolator>(&described.stage.design))
+        growth = growth_bits(*interpolator);
+    if (growth < 0 || described.state.bits == wide_bits || described.in.word.bits == wide_bits) return std::nullopt;
+    const int needed = described.in.word.bits + growth;
+    if (described.state.bits >= needed) return std::nullopt;
+    return refuse("state_bits",
+                  "registers of " + text_of(described.state.bits) + " bits are too narrow for " +
+                      text_of(described.in.word.bits) + "-bit samples that grow by " + text_of(growth) + " bits",
+                  "state_bits = " + text_of(needed) + " would do");
+}
+
+std::optional<Error> number_that_cannot_be(const DescribedStage& described) {
+    if (described.number != NumberKind::integer || !(described.in.is_float || described.out.is_float))
+        return std::nullopt;
+    return refuse("number",
+                  described.in.is_float ? "integers are computed from f32 words" : "f32 words come from integers",
+                  "give number = \"float32\", or words of whole numbers");
+}
+
+}  // namespace
+
+std::optional<Error> contradiction_in(const DescribedStage& stage) {
+    if (auto error = number_that_cannot_be(stage)) return error;
+    if (auto error = division_that_cannot_be(stage)) return error;
+    if (stage.number == NumberKind::float32) return std::nullopt;
+    if (auto error = coefficient_outside(stage)) return error;
+    if (auto error = accumulator_too_narrow(stage)) return error;
+    if (auto error = registers_too_narrow(stage)) return error;
+    return saving_without_loss(stage);
+}
+
+}  // namespace halflsb

@@ -1,0 +1,59 @@
+// The declared reference of a description: element by element, as the rails are watched.
+#include <algorithm>
+#include <limits>
+
+#include "oracle/arithmetic/declared.hpp"
+#include "oracle/arithmetic/element_filter.hpp"
+
+namespace halflsb {
+
+namespace {
+
+// Pieces that stay in the first-level cache while they pass the elements.
+constexpr std::size_t piece_samples = 1024;
+
+class DescribedReference final : public Filter {
+public:
+    DescribedReference(const DescribedChain& chain, double gain) : gain_(gain) {
+        const ExactChain exact = exact_chain(chain);
+        for (const ChainElement& element : chain_elements(chain, exact)) elements_.emplace_back(element);
+        if (chain.stages.back().out.is_float) largest_ = static_cast<double>(std::numeric_limits<float>::max());
+    }
+
+    void reset() override {
+        for (ElementFilter& element : elements_) element.reset();
+    }
+
+    void process(std::span<const double> in, std::span<double> out) override {
+        for (std::size_t done = 0; done < in.size(); done += piece_samples) {
+            const std::size_t count = std::min(piece_samples, in.size() - done);
+            process_piece(in.subspan(done, count), out.subspan(done, count));
+        }
+    }
+
+private:
+    void process_piece(std::span<const double> in, std::span<double> out) {
+        from_.assign(in.begin(), in.end());
+        for (auto* series : {&sums_, &held_, &to_}) series->resize(in.size());
+        for (ElementFilter& element : elements_) {
+            element.process(from_, sums_, held_, to_);
+            from_.swap(to_);
+        }
+        for (std::size_t n = 0; n < out.size(); ++n) {
+            // NaN compares false with both ends and stays.
+            out[n] = std::clamp(from_[n] * gain_, -largest_, largest_);
+        }
+    }
+
+    std::vector<ElementFilter> elements_;
+    double gain_, largest_ = std::numeric_limits<double>::infinity();
+    std::vector<double> from_, to_, sums_, held_;
+};
+
+}  // namespace
+
+std::unique_ptr<Filter> make_declared_filter(const DescribedChain& chain, double gain) {
+    return std::make_unique<DescribedReference>(chain, gain);
+}
+
+}  // namespace halflsb

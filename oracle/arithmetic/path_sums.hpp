@@ -1,0 +1,29 @@
+// Sums over the impulse response h of a path, and over its step response s[n] = h[0] + ... + h[n], that the errors of a
+// rounding point end in.
+#pragma once
+
+#include <cstdint>
+#include <vector>
+
+#include "oracle/filters/filter.hpp"
+
+namespace halflsb {
+
+struct PathSums {
+    /// Of the h[n] above 0 and below it. What was not run is in both (no_limit where no bound is known).
+    double positive = 0.0, negative = 0.0;
+    double squares = 0.0;  ///< sum h^2
+    /// autocorrelation[l] = sum h[n] h[n + l]; [0] is squares. As many as were asked for.
+    std::vector<double> autocorrelation;
+    double dc = 0.0;  ///< s at its end: the gain at zero frequency
+    /// Means over the first `samples` of s where it is positive, where it is negative, and of s^2.
+    double step_positive = 0.0, step_negative = 0.0, step_squares = 0.0;
+
+    double l1() const { return positive - negative; }
+};
+
+/// Runs the path until its rest is proven to be below 1e-12 of sum |h| (impulse_run.hpp), at most 2^22 samples; `lags`
+/// of the autocorrelation, at least 1. samples > 0.
+PathSums path_sums(const FilterChain& path, std::int64_t samples, std::size_t lags);
+
+}  // namespace halflsb

@@ -1,0 +1,92 @@
+// The rails of one element, and what reaches them. Private to this room.
+#pragma once
+
+#include <span>
+#include <vector>
+
+#include "oracle/arithmetic/element_filter.hpp"
+#include "oracle/arithmetic/node_bounds.hpp"
+#include "oracle/arithmetic/rail_watch.hpp"
+
+namespace halflsb {
+
+/// What an element gets: its largest |value| by words or worst case, and the largest error of it.
+struct ElementInput {
+    double level = 0.0, error = 0.0;
+    bool is_clipped = false;  ///< an element before may clip: the worst case is no longer that of one linear path
+    double full_scale = 0.0;  ///< of the chain's input
+};
+
+class RailElement {
+public:
+    RailElement(const ChainElement& element, const NodeBounds& bounds, const ElementInput& input, bool is_only_one,
+                bool behind_can_forget);
+
+    bool is_watched() const;
+    const std::vector<RailNode>& nodes() const { return nodes_; }
+    /// What the next element gets.
+    ElementInput output() const { return output_; }
+
+    void reset();
+    /// reached[n][node]... node index + 1 of the gravest rail that sample n may reach, 0 for none. `out` may be `in`'s
+    /// place in the chain, not the same memory.
+    void process(std::span<const double> in, std::span<double> out, std::span<std::uint8_t> reached);
+
+private:
+    /// What a rail looks at.
+    enum class Source {
+        sum,   ///< before anything holds it
+        held,  ///< the sum as a loop feeds it back
+        input,
+        window,       ///< the sum of a moving average, not divided
+        window_rest,  ///< less the oldest, before the newest comes
+        state,        ///< of direct-2
+        state_1,
+        state_2,  ///< of transposed-2
+        product,  ///< of a one-pole by difference
+        partial,
+    };
+    struct PartialTerm {
+        double coefficient = 1.0;
+        std::size_t delay = 0;
+        Source of = Source::input;
+    };
+    struct Rail {
+        Source source = Source::sum;
+        double lowest = 0.0, highest = 0.0;  ///< narrowed by the error
+        std::vector<PartialTerm> terms;      ///< of a partial sum, in the order in which they are added
+    };
+
+    void of_fir(const Fir& fir);
+    void of_average(int points);
+    void of_loop();
+    void of_direct_2();
+    void of_transposed();
+    void add_output(double error, bool comes_back);
+
+    Word accumulator(int terms, int target) const;
+    RailEffect behind() const { return behind_can_forget_ ? RailEffect::exempt : RailEffect::lost; }
+    void add_sum(const char* name, const Word& word, Source source, double worst, double error, RailEffect effect,
+                 std::vector<PartialTerm> terms);
+    void add(const char* name, const Word& word, Source source, double worst, double error, RailEffect effect,
+             std::vector<PartialTerm> terms = {});
+    double level_of(Source source) const;
+    double error_of(Source source) const;
+    double value_at(Source source, std::size_t n) const;
+    bool leaves_rail(const Rail& rail, std::size_t n) const;
+
+    const ChainElement element_;
+    bool is_only_one_, behind_can_forget_;
+    ElementInput input_, output_;
+    double sum_level_ = 0.0, sum_error_ = 0.0, out_error_ = 0.0, state_level_ = 0.0, state_error_ = 0.0;
+    std::vector<RailNode> nodes_;
+    std::vector<Rail> rails_;  ///< one for one with nodes_
+    ElementFilter filter_;
+    std::unique_ptr<Filter> state_filter_;  ///< of direct-2
+    double points_over_gain_ = 1.0;
+
+    std::size_t reach_back_ = 2;              ///< samples of the past that partial sums look at
+    std::vector<double> in_, sums_, states_;  ///< with the past in front; states of a loop: what it holds
+};
+
+}  // namespace halflsb

@@ -1,0 +1,126 @@
+#include "oracle/arithmetic/sum_points.hpp"
+
+#include <algorithm>
+#include <bit>
+#include <cmath>
+#include <limits>
+
+namespace halflsb {
+
+namespace {
+
+constexpr double unlimited = std::numeric_limits<double>::infinity();
+
+int trailing_zeros(std::int64_t stored) { return std::countr_zero(static_cast<std::uint64_t>(stored)); }
+
+double power_of_two(int exponent) { return std::ldexp(1.0, exponent); }
+
+}  // namespace
+
+std::optional<Rounding> SumPoints::rounding_of(const SumTarget& target) const {
+    return stage_.rounding_is_said ? std::optional(target.rounding) : std::nullopt;
+}
+
+RoundingPoint SumPoints::point_at(const SumTarget& target) const {
+    RoundingPoint point;
+    point.name = "stage " + std::to_string(index_ + 1) + ", " + target.what;
+    point.stage = index_;
+    point.node = target.node;
+    point.node.in_feedback = target.place == RoundingPoint::Place::loop;
+    point.place = target.place;
+    point.step = power_of_two(-target.fraction_bits);
+    point.from_input = target.from_input;
+    return point;
+}
+
+void SumPoints::add_shortening(const SumTarget& target, const RoundedNumbers& numbers) {
+    // What is not known may drop anything, even where the words as they are described drop nothing.
+    if (stage_.rounding_is_said && numbers.parts <= 1.0) return;
+    RoundingPoint point = point_at(target);
+    point.parts = stage_.rounding_is_said ? numbers.parts : unlimited;
+    point.error = rounding_error(rounding_of(target), numbers).times(point.step);
+    point.variance_each = point.error.variance;
+    point.saves_fraction = target.saves_fraction;
+    points.push_back(std::move(point));
+}
+
+void SumPoints::add_product(const Term& product, const SumTarget& target, double sign) {
+    const RoundedNumbers numbers = numbers_of({product}, product.fraction_bits, target.fraction_bits);
+    if (is_known() && (product.stored == 0 || numbers.parts <= 1.0)) return;
+    RoundingPoint point = point_at(target);
+    point.parts = numbers.parts;
+    point.error = rounding_error(rounding_of(target), numbers).times(sign * point.step);
+    point.variance_each = point.error.variance;
+    point.from_input = target.from_input_of_terms;
+    point.factor = std::fabs(product.coefficient);
+    points.push_back(std::move(point));
+}
+
+void SumPoints::add_sum(std::vector<Term> terms, const SumTarget& target) {
+    std::erase_if(terms, [](const Term& t) { return t.stored == 0 || t.coefficient == 0.0; });
+    if (terms.empty()) return;
+    int most = terms.front().fraction_bits;
+    for (const Term& t : terms) most = std::max(most, t.fraction_bits);
+    const int accumulator = accumulator_fraction_bits_of(stage_, most, target.fraction_bits);
+    add_products(terms, target, accumulator, false);
+    add_products(terms, target, accumulator, true);
+    if (!is_known()) {
+        if (stage_.rounding_at != RoundingAt::product) add_shortening(target, {unlimited, -unlimited, unlimited});
+        return;
+    }
+    RoundedNumbers numbers = numbers_of(terms, accumulator, target.fraction_bits);
+    if (target.saves_fraction) numbers = {numbers.parts, -unlimited, unlimited};
+    add_shortening(target, numbers);
+}
+
+// Forward products and those of feedback are two points: the errors of one word by several coefficients go together.
+void SumPoints::add_products(const std::vector<Term>& terms, const SumTarget& target, int accumulator,
+                             bool of_feedback) {
+    SumTarget products = target;
+    products.rounding = stage_.rounding;  // whatever the rounding of the sum is
+    products.what += of_feedback ? ", products of feedback" : ", products";
+    products.fraction_bits = accumulator;
+    RoundingPoint point = point_at(products);
+    point.count = 0;
+    point.factor = unlimited;
+    point.from_input = of_feedback ? target.from_input : target.from_input_of_terms;
+    const bool any = stage_.rounding_at == RoundingAt::product && !is_known();
+    for (const Term& t : terms) {
+        if (t.is_feedback != of_feedback || (!any && !stage_.coefficients_are_said)) continue;
+        Term product = t;
+        product.is_subtracted = false;
+        const RoundedNumbers numbers = any ? RoundedNumbers{unlimited, -unlimited, unlimited}
+                                           : numbers_of({product}, t.fraction_bits, accumulator);
+        if (numbers.parts <= 1.0) continue;
+        const double step = t.is_subtracted ? -point.step : point.step;
+        const RoundingError error = rounding_error(rounding_of(products), numbers).times(step);
+        ++point.count;
+        point.error = point.error + error;
+        point.parts = std::max(point.parts, numbers.parts);
+        point.variance_each = std::max(point.variance_each, error.variance);
+        point.factor = std::min(point.factor, std::fabs(t.coefficient));
+    }
+    if (point.count > 0) points.push_back(std::move(point));
+}
+
+// Of a sum in an accumulator, in steps of the words that it goes to. Its remainders are multiples of the smallest power
+// of two that a term has; its range is that of its terms at the ends of their words.
+RoundedNumbers SumPoints::numbers_of(const std::vector<Term>& terms, int accumulator, int target_bits) const {
+    if (!stage_.coefficients_are_said) return {unlimited, -unlimited, unlimited};
+    int common = 64;
+    double low = 0.0, high = 0.0;
+    for (const Term& t : terms) {
+        const int gained = accumulator - t.fraction_bits;
+        common = std::min(common, gained < 0 ? 0 : trailing_zeros(t.stored) + gained);
+        const double stored = static_cast<double>(t.stored);
+        const double scale = std::ldexp(t.is_subtracted ? -stored : stored, target_bits - t.fraction_bits);
+        const double lowest = -power_of_two(t.word.bits - 1), highest = power_of_two(t.word.bits - 1) - 1.0;
+        low += std::min(lowest * scale, highest * scale);
+        high += std::max(lowest * scale, highest * scale);
+        // A product that was shortened before can lie a step of the accumulator beyond its range.
+        if (gained < 0) low -= power_of_two(target_bits - accumulator), high += power_of_two(target_bits - accumulator);
+    }
+    return {power_of_two(std::max(0, accumulator - target_bits - common)), low, high};
+}
+
+}  // namespace halflsb

@@ -1,0 +1,53 @@
+// The rounding points of one sum of products: what its terms drop, and what the sum drops. Private to this room.
+#pragma once
+
+#include "oracle/arithmetic/rounding_points.hpp"
+
+namespace halflsb {
+
+/// A product of a sum: stored coefficient times words.
+struct Term {
+    double coefficient = 1.0;    ///< as a value
+    std::int64_t stored = 1;     ///< 1 where nothing says how finely it is stored
+    int fraction_bits = 0;       ///< of the product
+    Word word = {};              ///< that is multiplied
+    bool is_feedback = false;    ///< of what the section returned before
+    bool is_subtracted = false;  ///< after it was shortened, if it was
+};
+
+/// Where a sum goes: which words, which rounding, which way to the output.
+struct SumTarget {
+    std::string what;
+    RoundingPoint::Place place = RoundingPoint::Place::behind;
+    FilterNode node = {};
+    int fraction_bits = 0;
+    Rounding rounding = Rounding::floor;
+    bool saves_fraction = false;
+    FilterChain from_input = {};           ///< to the sum
+    FilterChain from_input_of_terms = {};  ///< to what its forward products multiply
+};
+
+class SumPoints {
+public:
+    SumPoints(const DescribedStage& stage, std::size_t stage_index) : stage_(stage), index_(stage_index) {}
+
+    void add_sum(std::vector<Term> terms, const SumTarget& target);
+    /// Numbers of so many parts, shortened.
+    void add_shortening(const SumTarget& target, const RoundedNumbers& numbers);
+    /// A product that is shortened by itself and then added (sign 1) or subtracted (-1).
+    void add_product(const Term& product, const SumTarget& target, double sign);
+
+    std::vector<RoundingPoint> points;
+
+private:
+    bool is_known() const { return stage_.rounding_is_said && stage_.coefficients_are_said; }
+    std::optional<Rounding> rounding_of(const SumTarget& target) const;
+    RoundingPoint point_at(const SumTarget& target) const;
+    void add_products(const std::vector<Term>& terms, const SumTarget& target, int accumulator, bool of_feedback);
+    RoundedNumbers numbers_of(const std::vector<Term>& terms, int accumulator, int target_bits) const;
+
+    const DescribedStage& stage_;
+    std::size_t index_;
+};
+
+}  // namespace halflsb

@@ -1,0 +1,81 @@
+#include "oracle/filters/multirate_norms.hpp"
+
+#include <algorithm>
+#include <cmath>
+#include <vector>
+
+#include "oracle/filters/impulse_run.hpp"
+#include "oracle/filters/rates.hpp"
+
+namespace halflsb {
+
+namespace {
+
+constexpr std::int64_t longest_cycle = 4096;
+constexpr std::int64_t most_samples = std::int64_t{1} << 20;
+constexpr double slack = 0x1p-20;
+
+// The product over single stages: no output is larger, whatever the phases.
+double product_of_norms(const FilterChain& chain, double tail) {
+    double product = 1.0;
+    for (const FilterStage& stage : chain) product *= l1_norm({stage}, tail);
+    return product;
+}
+
+}  // namespace
+
+double l1_of_changing_rate(const FilterChain& chain, double tail) {
+    const RateCycle cycle = rate_cycle(chain);
+    if (cycle.inputs > longest_cycle || cycle.outputs > most_samples)
+        return chain.size() > 1 ? product_of_norms(chain, tail) : no_limit;
+    std::vector<double> sums(static_cast<std::size_t>(cycle.outputs), 0.0);
+    for (std::int64_t input = 0; input < cycle.inputs; ++input) {
+        ImpulseRun run(chain, static_cast<std::size_t>(input));
+        std::size_t phase = 0;
+        double sum = 0.0;
+        for (std::int64_t done = 0;; done += static_cast<std::int64_t>(ImpulseRun::piece_samples)) {
+            for (const double h : run.next()) {
+                sums[phase] += std::fabs(h);
+                sum += std::fabs(h);
+                if (++phase == sums.size()) phase = 0;
+            }
+            if (run.rest() <= tail * sum) break;
+            if (done > input + most_samples) return chain.size() > 1 ? product_of_norms(chain, tail) : no_limit;
+        }
+    }
+    return *std::max_element(sums.begin(), sums.end());
+}
+
+std::optional<std::int64_t> flush_of_changing_rate(const FilterChain& chain, double limit) {
+    const RateCycle cycle = rate_cycle(chain);
+    if (cycle.inputs > longest_cycle || cycle.outputs > most_samples) return std::nullopt;
+    std::vector<double> largest;  // weight of an input that is `index` samples older than the newest one
+    double rest = 0.0;
+    for (std::int64_t input = 0; input < cycle.inputs; ++input) {
+        ImpulseRun run(chain, static_cast<std::size_t>(input));
+        std::int64_t done = 0, output = 0;
+        do {
+            if (done > input + 2 * most_samples) return std::nullopt;
+            const std::span<const double> piece = run.next();
+            std::int64_t newest = done;  // input with which the next output comes
+            for (const double h : piece) {
+                while (outputs_after(chain, newest + 1) <= output) ++newest;
+                ++output;
+                if (newest < input) continue;
+                const auto age = static_cast<std::size_t>(newest - input);
+                if (age >= largest.size()) largest.resize(age + 1, 0.0);
+                largest[age] = std::max(largest[age], std::fabs(h));
+            }
+            done += static_cast<std::int64_t>(ImpulseRun::piece_samples);
+        } while (!(run.rest() <= slack * limit / static_cast<double>(cycle.inputs)));
+        rest += run.rest();
+    }
+    double left = rest;
+    std::size_t start = largest.size();  // the smallest age from which on all together stay below the limit
+    while (start > 0 && left + largest[start - 1] < limit) left += largest[--start];
+    // The newest sample of the past is one older than the first zero.
+    const std::int64_t zeros = start > 0 ? static_cast<std::int64_t>(start) - 1 : 0;
+    return (zeros + cycle.inputs - 1) / cycle.inputs * cycle.inputs;
+}
+
+}  // namespace halflsb

@@ -1,0 +1,34 @@
+// Limits of an error rule that follow from the declared arithmetic: of one case on one channel.
+#pragma once
+
+#include <optional>
+
+#include "oracle/arithmetic/error_bound.hpp"
+#include "oracle/judge/plan.hpp"
+
+namespace halflsb {
+
+/// In values of the output.
+struct DerivedLimits {
+    double largest = 0.0;
+    /// While no rail is reached: of noise by its statistics, else the worst case.
+    double rms = 0.0, bias = 0.0;
+    /// Once one may have been: the worst case.
+    double worst_rms = 0.0, worst_bias = 0.0;
+};
+
+/// How the bound is used for this case: its judged samples, and the rms of the input where the stimulus is white noise
+/// (of the first 2^16 samples, as quantised).
+BoundUse bound_use(const Plan& plan, const Case& the_case, int channel);
+/// What the arithmetic of a channel says, counted from 1; nullopt where it cannot be described (the reader refuses it).
+std::optional<DescribedChain> described_channel(const Plan& plan, const Case& the_case, int channel);
+/// nullopt where the arithmetic cannot be described. Costs the impulse responses of all paths from a rounding to the
+/// output, some 40 time constants of the slowest pole each.
+std::optional<DerivedLimits> derived_limits(const Plan& plan, const Case& the_case, int channel);
+
+/// Some limit of the rule is derived.
+bool is_derived(const ErrorRule& rule);
+/// The limit as a value of the output; of a derived one the entry of `derived`.
+double value_of(const Limit& limit, const Signal& signal, double derived);
+
+}  // namespace halflsb

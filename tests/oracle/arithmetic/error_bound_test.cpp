@@ -1,0 +1,248 @@
+#include "oracle/arithmetic/error_bound.hpp"
+
+#include <algorithm>
+#include <numeric>
+
+#include "tests/oracle/arithmetic/plain_arithmetic.hpp"
+#include "tests/oracle/arithmetic/random_description.hpp"
+#include "tests/oracle/arithmetic/stimulus_words.hpp"
+
+using namespace halflsb;
+using namespace halflsb::testing;
+using Catch::Matchers::WithinRel;
+
+namespace {
+
+struct Extremes {
+    double lowest = 0.0, highest = 0.0;
+};
+
+Extremes errors_of(const DescribedChain& chain, const std::vector<Code>& words) {
+    const auto response = plain_response(chain, words);
+    const auto reference = run(exact_chain(chain).stages, values_of_words(chain, words));
+    Extremes found;
+    for (std::size_t n = 0; n < words.size(); ++n) {
+        found.lowest = std::min(found.lowest, response[n] - reference[n]);
+        found.highest = std::max(found.highest, response[n] - reference[n]);
+    }
+    return found;
+}
+
+DescribedChain one_stage(FilterDesign design, std::optional<int> bits, const StageArithmetic& said,
+                         std::string kind = "biquad-cascade", std::string_view in = "q15",
+                         std::string_view out = "q15") {
+    FilterStage stage{std::move(design), bits, said, std::move(kind), {}};
+    return *describe({stage}, *sample_format(in), *sample_format(out), 1.0).described;
+}
+
+}  // namespace
+
+TEST_CASE("error bound: no response of any description exceeds it", "[arithmetic]") {
+    Random random(401);
+    INFO("seed 401");
+    int tight = 0;
+    for (int trial = 0; trial < 400; ++trial) {
+        const RandomChain chain = random_chain(random);
+        INFO("trial " << trial << ": " << text_of(chain));
+        const ErrorBound bound = derive(chain.described);
+        Extremes worst;
+        for (int run = 0; run < 4; ++run) {
+            const Extremes found = errors_of(chain.described, hard_words(random, chain.described, 300));
+            worst.lowest = std::min(worst.lowest, found.lowest);
+            worst.highest = std::max(worst.highest, found.highest);
+        }
+        REQUIRE(worst.lowest >= bound.lower);
+        REQUIRE(worst.highest <= bound.upper);
+        tight += bound.largest() <= 2.0 * std::max(-worst.lowest, worst.highest);
+    }
+    // No proof of anything, but a bound that were always far off would be of no use.
+    CHECK(tight > 200);
+}
+
+namespace {
+
+/// What an adversary reaches who picks the words of one window of a filter without feedback: the best of many random
+/// windows, each improved word by word.
+Extremes searched(Random& random, const DescribedChain& chain, std::size_t window) {
+    Extremes best;
+    const auto try_words = [&](const std::vector<Code>& words, double sign) {
+        const double reached = plain_response(chain, words).back();
+        const double exact = run(exact_chain(chain).stages, values_of_words(chain, words)).back();
+        best.lowest = std::min(best.lowest, reached - exact);
+        best.highest = std::max(best.highest, reached - exact);
+        return sign * (reached - exact);
+    };
+    const std::int64_t top = top_of(chain);
+    for (int start = 0; start < 40; ++start) {
+        const double sign = start % 2 == 0 ? 1.0 : -1.0;
+        std::vector<Code> words(window);
+        for (Code& word : words) word = static_cast<Code>(random.whole(-top - 1, top));
+        double reached = try_words(words, sign);
+        for (std::size_t n = 0; n < window; ++n) {
+            for (int trial = 0; trial < 12; ++trial) {
+                const Code old = words[n];
+                words[n] = static_cast<Code>(random.whole(-top - 1, top));
+                const double now = try_words(words, sign);
+                if (now < reached) words[n] = old;
+                reached = std::max(reached, now);
+            }
+        }
+    }
+    return best;
+}
+
+}  // namespace
+
+TEST_CASE("error bound: an adversary reaches more than half of it in a fir or a moving average", "[arithmetic]") {
+    Random random(402);
+    INFO("seed 402");
+    int checked = 0;
+    while (checked < 60) {
+        const RandomChain chain = random_chain(random);
+        if (chain.stages.size() > 1) continue;
+        const auto* fir = std::get_if<Fir>(&chain.stages.front().design);
+        const auto* average = std::get_if<MovingAverage>(&chain.stages.front().design);
+        const std::size_t window = fir ? fir->taps.size() : average ? static_cast<std::size_t>(average->points) : 0;
+        if (window == 0 || window > 20) continue;
+        INFO(text_of(chain));
+        const ErrorBound bound = derive(chain.described);
+        // With fraction saving the sample before has a share in it.
+        const bool saves = chain.described.stages.front().fraction_saving;
+        const Extremes found = searched(random, chain.described, saves ? window + 1 : window);
+        REQUIRE(found.lowest >= bound.lower);
+        REQUIRE(found.highest <= bound.upper);
+        REQUIRE(bound.largest() <= 2.0 * std::max(-found.lowest, found.highest) + 2.0 * bound.reference_error);
+        ++checked;
+    }
+}
+
+TEST_CASE("error bound: a rounding at the output of a fir, each by its own ends", "[arithmetic]") {
+    const auto bound_of = [](Rounding rounding, std::vector<double> taps) {
+        StageArithmetic said;
+        said.rounding = rounding;
+        return derive(one_stage(Fir{std::move(taps)}, 4, said, "fir"));
+    };
+    const double q = 0x1p-15;
+    const ErrorBound floored = bound_of(Rounding::floor, {0.0625, 0.25});
+    CHECK((floored.lower == -15.0 / 16.0 * q && floored.upper == 0.0));
+    CHECK(floored.step == q);
+    // All coefficients even: only 8 remainders are left.
+    CHECK(bound_of(Rounding::floor, {0.125, 0.25}).lower == -7.0 / 8.0 * q);
+    CHECK(bound_of(Rounding::half_up, {0.125, 0.25}).lower == -3.0 / 8.0 * q);
+    CHECK(bound_of(Rounding::half_up, {0.125, 0.25}).upper == 0.5 * q);
+    CHECK(bound_of(Rounding::toward_zero, {0.0625}).upper == 15.0 / 16.0 * q);
+    // Whole coefficients lose nothing.
+    CHECK(bound_of(Rounding::floor, {1.0, -2.0}).largest() == 0.0);
+    CHECK(bound_of(Rounding::floor, {1.0, -2.0}).terms.empty());
+}
+
+TEST_CASE("error bound: a moving average of three has no ties, one of four has", "[arithmetic]") {
+    const auto bound_of = [](int points, Rounding rounding) {
+        StageArithmetic said;
+        said.rounding = rounding;
+        const ErrorBound bound = derive(one_stage(MovingAverage{points}, std::nullopt, said, "moving-average"));
+        return std::pair{(bound.lower + bound.reference_error) / bound.step,
+                         (bound.upper - bound.reference_error) / bound.step};
+    };
+    CHECK_THAT(bound_of(3, Rounding::half_up).second, WithinRel(1.0 / 3.0, 1e-12));
+    CHECK_THAT(bound_of(3, Rounding::floor).first, WithinRel(-2.0 / 3.0, 1e-12));
+    CHECK_THAT(bound_of(4, Rounding::half_up).second, WithinRel(0.5, 1e-12));
+    CHECK_THAT(bound_of(4, Rounding::half_up).first, WithinRel(-0.25, 1e-12));
+    CHECK_THAT(bound_of(16, Rounding::floor).first, WithinRel(-15.0 / 16.0, 1e-12));
+}
+
+TEST_CASE("error bound: what a rounding is not said to be is any from floor to half-up", "[arithmetic]") {
+    const ErrorBound fir = derive(one_stage(Fir{{0.3, 0.2}}, std::nullopt, {}, "fir"));
+    CHECK((fir.lower <= -fir.step && fir.lower > -1.001 * fir.step));
+    CHECK((fir.upper >= 0.5 * fir.step && fir.upper < 0.501 * fir.step));
+    // Each of the five roundings said lies within, for any structure that shortens once.
+    for (const Rounding rounding : {Rounding::floor, Rounding::half_up, Rounding::half_away, Rounding::half_even}) {
+        StageArithmetic said;
+        said.rounding = rounding;
+        const BiquadCascade cascade{{cookbook(Shape::low_pass, 0.05, 2.0)}};
+        const ErrorBound any = derive(one_stage(cascade, 14, {})), one = derive(one_stage(cascade, 14, said));
+        CHECK((any.lower <= one.lower && any.upper >= one.upper));
+    }
+}
+
+// check-values 9.1: COMPUTED there, and repeated in Octave: y = 0.9 y[n-1] + x, one rounding: noise gain
+// 5.263157894736842, so 0.662266 LSB rms; a floor instead adds -1/2 x 1 / (1 - a) = -5 LSB. Poles 0.9 and pi / 4:
+// L1 8.964211125722, noise gain 5.752258794440968.
+TEST_CASE("error bound: the worked round-off noise of a one-pole and of a pair of poles", "[arithmetic]") {
+    StageArithmetic said;
+    said.rounding = Rounding::floor;
+    BoundUse use;
+    use.samples = 1 << 20;
+    use.noise_like = true;
+    use.input_rms = 0.02;
+    const ErrorBound one = derive(one_stage(BiquadCascade{{{1.0, 0.0, 0.0, -0.9, 0.0}}}, 20, said), use);
+    REQUIRE(one.terms.size() == 1);
+    CHECK_THAT(one.terms[0].noise_gain, WithinRel(5.263157894736842, 1e-5));
+    CHECK_THAT(std::sqrt(one.terms[0].variance) / one.step, WithinRel(0.662266, 1e-5));
+    CHECK_THAT(one.terms[0].bias_lower / one.step, WithinRel(-5.0, 1e-4));
+    CHECK(one.is_statistical);
+    const double r = 0.9, theta = 3.14159265358979323846 / 4.0;
+    const ErrorBound two =
+        derive(one_stage(BiquadCascade{{{1.0, 0.0, 0.0, -2.0 * r * std::cos(theta), r * r}}}, 30, said), use);
+    CHECK_THAT(two.terms[0].noise_gain, WithinRel(5.752258794440968, 1e-6));
+    CHECK_THAT(two.terms[0].l1, WithinRel(8.964211125722, 1e-6));
+}
+
+TEST_CASE("error bound: rms and bias of noise stay within, and not far below", "[arithmetic]") {
+    Random random(403);
+    INFO("seed 403");
+    int near_rms = 0, near_bias = 0, statistical = 0;
+    for (int trial = 0; trial < 150; ++trial) {
+        RandomChain chain = random_chain(random);
+        BoundUse use;
+        use.samples = 3000;
+        use.noise_like = true;
+        const std::int64_t top = top_of(chain.described);
+        use.input_rms =
+            std::ldexp(static_cast<double>(top), -chain.described.stages.front().in.word.fraction_bits) / 1.7321;
+        const ErrorBound bound = derive(chain.described, use);
+        std::vector<Code> words(3000);
+        for (Code& word : words) word = static_cast<Code>(random.whole(-top - 1, top));
+        const auto response = plain_response(chain.described, words);
+        const auto reference = run(exact_chain(chain.described).stages, values_of_words(chain.described, words));
+        double sum = 0.0, squares = 0.0;
+        for (std::size_t n = 0; n < words.size(); ++n) {
+            sum += response[n] - reference[n];
+            squares += (response[n] - reference[n]) * (response[n] - reference[n]);
+        }
+        const double rms = std::sqrt(squares / 3000.0), mean = sum / 3000.0;
+        INFO("trial " << trial << ": " << text_of(chain) << ", rms " << rms / bound.step << " of "
+                      << bound.rms / bound.step << ", bias " << mean / bound.step << " of "
+                      << bound.bias_lower / bound.step << " .. " << bound.bias_upper / bound.step);
+        REQUIRE(rms <= bound.rms);
+        REQUIRE(mean >= bound.bias_lower);
+        REQUIRE(mean <= bound.bias_upper);
+        REQUIRE(bound.rms <= bound.largest());
+        if (!bound.is_statistical || bound.terms.empty()) continue;
+        ++statistical;
+        near_rms += bound.rms <= 2.0 * rms;
+        near_bias += bound.bias_upper - bound.bias_lower <= 0.5 * bound.rms;
+    }
+    CHECK(statistical > 50);
+    CHECK(near_rms > statistical / 2);
+    CHECK(near_bias > statistical / 2);
+}
+
+TEST_CASE("error bound: without noise the worst case stands for rms and bias", "[arithmetic]") {
+    StageArithmetic said;
+    said.rounding = Rounding::half_up;
+    const DescribedChain chain = one_stage(BiquadCascade{{cookbook(Shape::low_pass, 0.02, 0.7)}}, 14, said);
+    const ErrorBound worst = derive(chain);
+    CHECK_FALSE(worst.is_statistical);
+    CHECK_THAT(worst.rms, WithinRel(worst.largest(), 1e-9));
+    CHECK((worst.bias_lower >= worst.lower && worst.bias_upper <= worst.upper));
+    // 6 bits above what is dropped, on both sides: the output has rms x sqrt(noise gain) to show.
+    BoundUse use;
+    use.noise_like = true;
+    const double level = 64.0 * worst.step / std::sqrt(noise_power_gain(exact_chain(chain).stages));
+    use.input_rms = 1.001 * level;
+    CHECK(derive(chain, use).is_statistical);
+    CHECK(derive(chain, use).rms < 0.2 * worst.largest());
+    use.input_rms = 0.999 * level;
+    CHECK_FALSE(derive(chain, use).is_statistical);
+}
