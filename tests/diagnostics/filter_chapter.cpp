@@ -109,6 +109,7 @@ void show_words(Page& page) {
     made("no tap", "fir", {{"taps", Reals{}}});
     made("a tap that is too large", "fir", {{"taps", Reals{1e40}}});
     made("no section", "biquad-cascade", {{"sections", std::vector<Reals>{}}});
+    made("six numbers of a file of sections", "biquad-cascade", {{"sections_file", Reals(6, 0.1)}});
     made("half a bit", "fir", {{"taps", Reals{1.0}}, {"coefficient_fraction_bits", 1.5}});
     made("too many bits", "fir", {{"taps", Reals{1.0}}, {"coefficient_fraction_bits", std::int64_t{63}}});
     made("no channel", "fir", {{"taps", Reals{1.0}}, {"channels", Reals{}}});
