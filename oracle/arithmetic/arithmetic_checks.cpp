@@ -125,7 +125,9 @@ std::optional<Error> accumulator_too_narrow(const DescribedStage& described) {
     if (!is_average) {
         const int terms = in.fraction_bits + described.coefficient_fraction_bits;
         const bool is_recursive = family != Family::fir;
-        const Word& target = is_recursive ? described.state : described.out.word;
+        // Of transposed-2 what is fed back are output words; its states have the fraction bits of products already.
+        const bool feeds_back_states = is_recursive && described.structure != Structure::transposed_2;
+        const Word& target = feeds_back_states ? described.state : described.out.word;
         const int most = is_recursive
                              ? std::max(in.fraction_bits, target.fraction_bits) + described.coefficient_fraction_bits
                              : terms;

@@ -183,6 +183,14 @@ std::variant<double, CComplaint> stored_in_word(const CType& type, const CValue&
 }  // namespace
 
 std::variant<CValue, CComplaint> c_constant(std::string_view text) {
+    if (text.find('\'') != std::string_view::npos) {
+        // Between two digits each, or it is none.
+        const bool is_good = text.back() != '\'' && text.find("''") == std::string_view::npos &&
+                             text.find("x'") == std::string_view::npos && text.find("X'") == std::string_view::npos;
+        std::string digits(text);
+        std::erase(digits, '\'');
+        return is_good ? c_constant(digits) : no_number(text);
+    }
     const bool is_hex = text.starts_with("0x") || text.starts_with("0X");
     return is_real_text(text, is_hex) ? real_constant(text, is_hex) : integer_constant(text);
 }

@@ -148,8 +148,10 @@ private:
         ++at_;
         while (at_ < text_.size()) {
             const char c = text_[at_], before = text_[at_ - 1];
+            // 1'000 of C++ and C23.
+            const bool is_separator = c == '\'' && at_ + 1 < text_.size() && is_name_part(text_[at_ + 1]);
             const bool is_exponent = before == 'e' || before == 'E' || before == 'p' || before == 'P';
-            if (!is_name_part(c) && c != '.' && !(is_exponent && (c == '+' || c == '-'))) return;
+            if (!is_name_part(c) && c != '.' && !is_separator && !(is_exponent && (c == '+' || c == '-'))) return;
             ++at_;
         }
     }

@@ -111,6 +111,9 @@ double delay_of(const FilterDesign& design, double f) {
         const double delay = comb->delay_samples;
         return TwoTaps{comb->direct, comb->forward, delay}.delay(f) - TwoTaps{1.0, comb->feedback, delay}.delay(f);
     }
+    if (const auto* recursion = std::get_if<Recursion>(&design)) {
+        return delay_of(Fir{recursion->b}, f) - delay_of(Fir{recursion->a}, f);
+    }
     const auto* cascade = std::get_if<BiquadCascade>(&design);
     if (cascade == nullptr) return no_delay;
     double sum = 0.0;
@@ -172,11 +175,19 @@ std::vector<double> symmetric_phase(const Fir& fir, std::span<const double> freq
     return phases;
 }
 
+std::vector<double> phases_of(const Fir& fir, std::span<const double> frequencies) {
+    const Symmetry symmetry = symmetry_of(fir.taps);
+    if (symmetry == Symmetry::none) return followed_phase(fir, frequencies);
+    return symmetric_phase(fir, frequencies, symmetry == Symmetry::odd);
+}
+
 std::vector<double> phases_of(const FilterDesign& design, std::span<const double> frequencies) {
-    if (const auto* fir = std::get_if<Fir>(&design)) {
-        const Symmetry symmetry = symmetry_of(fir->taps);
-        if (symmetry == Symmetry::none) return followed_phase(*fir, frequencies);
-        return symmetric_phase(*fir, frequencies, symmetry == Symmetry::odd);
+    if (const auto* fir = std::get_if<Fir>(&design)) return phases_of(*fir, frequencies);
+    if (const auto* recursion = std::get_if<Recursion>(&design)) {
+        std::vector<double> phases = phases_of(Fir{recursion->b}, frequencies);
+        const std::vector<double> below = phases_of(Fir{recursion->a}, frequencies);
+        for (std::size_t i = 0; i < phases.size(); ++i) phases[i] -= below[i];
+        return phases;
     }
     std::vector<double> phases;
     for (const double f : frequencies) {

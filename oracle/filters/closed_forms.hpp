@@ -29,7 +29,8 @@ std::vector<double> unwrapped_phase(const FilterChain& chain, std::span<const do
 /// C(w) = e^(j w) (p0 + p1 e^(-j w) + p2 e^(-2 j w)) a polynomial delays by 1 - (p0 - p2)(p0 + p2 + p1 cos w) / |C|^2,
 /// the numerator's delay counts, the denominator's is taken off. FIR: the real part of sum k h[k] e^(-j w k) over
 /// sum h[k] e^(-j w k); (N - 1) / 2 where the taps are symmetric or antisymmetric. Not a number where another FIR
-/// returns nothing at all, and for kinds without a phase of their own.
+/// returns nothing at all, and for kinds that are not linear or change the rate. A recursion by b and a is one FIR over
+/// another.
 double group_delay_samples(const FilterChain& chain, double cycles_per_sample);
 
 /// The response to 1, 1, 1 ... from rest.

@@ -158,14 +158,13 @@ private:
                         "say in the plan what stands in a row, for example file_layout = \"b0 0 b1 b2 a1 a2\""));
         }
         if (numbers_.size() % size != 0) {
-            const bool may_have_six = numbers_.size() % 6 == 0 && !words_.layout;
             return refuse(in_plan(
                 words_.key, words_.key + ": " + text_of(numbers_.size()) + " numbers are no whole number of sections",
-                may_have_six ? "a section has 5 numbers, b0 b1 b2 a1 a2; where it has 6, say which: "
-                               "file_layout = \"b0 b1 b2 a0 a1 a2\""
-                             : "a section has " + text_of(size) +
-                                   " numbers here; file_layout says "
-                                   "which, file_padding_after what is none of them"));
+                numbers_.size() % 6 == 0 && !words_.layout
+                    ? "a section has 5 numbers, b0 b1 b2 a1 a2; where it has 6, say which: file_layout = \"" + six() +
+                          "\""
+                    : "a section has " + text_of(size) +
+                          " numbers here; file_layout says which, file_padding_after what is none of them"));
         }
         for (std::size_t at = 0; at < numbers_.size(); at += size) {
             const std::span<const double> group(numbers_.data() + at, size);
@@ -180,6 +179,13 @@ private:
             }
         }
         return true;
+    }
+
+    /// Which six numbers a group may have: libraries for microcontrollers put a 0 behind b0.
+    std::string six() const {
+        bool has_zeros = true;
+        for (std::size_t at = 1; at < numbers_.size(); at += 6) has_zeros = has_zeros && numbers_[at] == 0.0;
+        return has_zeros ? "b0 0 b1 b2 a1 a2" : std::string(layout_with_a0);
     }
 
     bool check_group(const SectionLayout& layout, std::span<const double> group, std::size_t at) {

@@ -46,6 +46,8 @@ void add_loop(FilterChain& path, const FilterChain& chain, const FilterNode& nod
         path.push_back(bare_cascade({{1.0, 0.0, 0.0, s.a1, s.a2}}));
     } else if (const auto* comb = std::get_if<Comb>(&chain[node.stage].design)) {
         path.push_back(bare(Comb{comb->delay_samples, 1.0, 0.0, comb->feedback}, "comb"));
+    } else if (const auto* recursion = std::get_if<Recursion>(&chain[node.stage].design)) {
+        path.push_back(bare(Recursion{{1.0}, recursion->a}, "iir"));
     }
 }
 

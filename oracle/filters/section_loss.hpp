@@ -13,7 +13,7 @@ inline constexpr double most_loss = 0x1p-24;
 
 /// At least the relative error of the response, at any frequency, that rounding a1 and a2 of each section can make (to
 /// first order): the sum over the sections of (half an ulp of a1 + half an ulp of a2) / min |A(e^jw)|. Infinite where
-/// a section is not stable.
+/// a section is not stable. Rounding of b can add as much again where its zeros lie near to the poles.
 double loss_of(const std::vector<BiquadSection>& sections);
 
 }  // namespace halflsb

@@ -2,12 +2,15 @@
 
 #include <algorithm>
 #include <charconv>
+#include <cmath>
 #include <cstdlib>
 
 #include "oracle/arithmetic/described.hpp"
 #include "oracle/filters/rates.hpp"
+#include "oracle/judge/derived_limits.hpp"
 #include "oracle/judge/latency_evidence.hpp"
 #include "oracle/judge/response_verdict.hpp"
+#include "oracle/judge/units.hpp"
 
 namespace halflsb {
 namespace {
@@ -109,6 +112,31 @@ void check_exact(const Plan& plan, const Case& the_case, const Rule& rule, std::
     }
 }
 
+/// A derived limit must be a limit: finite, and narrower than full scale.
+void check_derived(const Plan& plan, const Case& the_case, const Rule& rule, std::vector<Refusal>& refusals) {
+    const auto& asked = std::get<ErrorRule>(rule.kind);
+    if (plan.filter_is_unknown || !is_derived(asked)) return;
+    const double widest = full_scale_value(plan.signal.output);
+    for (int channel = 1; channel <= plan.signal.channels; ++channel) {
+        const auto limits = derived_limits(plan, the_case, channel);
+        if (!limits) return;  // the reader has refused it
+        double wanted = 0.0;
+        if (asked.largest && asked.largest->is_derived) wanted = limits->largest;
+        if (asked.rms && asked.rms->is_derived) wanted = std::max(wanted, limits->worst_rms);
+        if (asked.bias && asked.bias->is_derived) wanted = std::max(wanted, limits->worst_bias);
+        if (wanted <= widest) continue;
+        const Limit::In in = natural_unit(plan.signal);
+        const std::string size = std::isfinite(wanted) ? "is " + brief(wanted / worth_of(in, plan.signal)) + " " +
+                                                             unit_name(in, plan.signal) + ", wider than full scale"
+                                                       : "has no end";
+        refusals.push_back({rule.position,
+                            "the limit that follows from the arithmetic in case \"" + the_case.name + "\" " + size,
+                            "say more of the arithmetic (halflsb predict shows what it comes from), give a number, or "
+                            "use kind = \"exact\""});
+        return;
+    }
+}
+
 /// A running case must have something left to judge.
 void check_discard(const Case& the_case, std::vector<Refusal>& refusals) {
     if (judged_samples(the_case) > 0) return;
@@ -204,6 +232,8 @@ std::vector<Refusal> refusals(const Plan& plan, const Case& the_case) {
             check_unchanged(the_case, rule, found);
         } else if (std::holds_alternative<ExactRule>(rule.kind)) {
             check_exact(plan, the_case, rule, found);
+        } else if (std::holds_alternative<ErrorRule>(rule.kind)) {
+            check_derived(plan, the_case, rule, found);
         }
     }
     return found;

@@ -4,8 +4,9 @@
  *   moving_average_q15_process_reciprocal   y = (sum * reciprocal + half) >> 16, reciprocal = 2^16 / points, nearest
  *
  * Formats: q15 samples; the sum has 32 bits and is exact, its product with the reciprocal 64. The reciprocal is off by
- * up to 2^-17, so the mean of 12 points by up to 2 codes in 32768 (5461 stands for 5461.33). It can exceed 1 / points (of
- * 11, for one), and a full-scale mean its word: the reciprocal way saturates. The quotient of the other always fits.
+ * up to 2^-17, so the mean of 12 points by up to 2 codes in 32768 (5461 stands for 5461.33). It can exceed 1 / points
+ * (of 11, for one), and a full-scale mean its word: the reciprocal way saturates. The quotient of the other always
+ * fits.
  */
 #ifndef BOARD_MOVING_AVERAGE_DIVISION_H
 #define BOARD_MOVING_AVERAGE_DIVISION_H

@@ -2,9 +2,9 @@
  *
  *   y += (x - y) >> shift
  *
- * Formats: q15 samples and state; the difference has 17 bits. Bits are lost in the shift, floored, every time: a constant
- * is reached from above, and from below y comes to rest up to 2^shift - 1 codes short of it. y stays between the samples
- * that it has seen: no saturation.
+ * Formats: q15 samples and state; the difference has 17 bits. Bits are lost in the shift, floored, every time: a
+ * constant is reached from above, and from below y comes to rest up to 2^shift - 1 codes short of it. y stays between
+ * the samples that it has seen: no saturation.
  */
 #ifndef BOARD_ONE_POLE_NARROW_H
 #define BOARD_ONE_POLE_NARROW_H

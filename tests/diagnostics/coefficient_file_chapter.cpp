@@ -125,6 +125,9 @@ std::string npy(const std::string& type, const std::string& shape, const std::st
 void show_words(Chapter& chapter) {
     const std::string q15 = "file_fraction_bits = 15\n", two = "int16_t low[] = {1}, high[] = {2};\n";
     chapter.taps("an array that is not there", "h.h", two, "file_array = \"mid\"\n" + q15);
+    chapter.taps("an array that is not there beside another", "h.h", "int16_t h[] = {1};\n",
+                 "file_array = \"g\"\n" + q15);
+    chapter.taps("rows of taps", "h.h", "int16_t h[2][2] = {{1, 2}, {3, 4}};\n", q15);
     chapter.taps("an array of a file without any", "h.h", "int h;\n", "file_array = \"h\"\n");
     chapter.taps("an array that is there twice", "h.h",
                  "#if WIDE\nint32_t h[] = {1};\n#else\nint16_t h[] = {1};\n#endif\n", "file_array = \"h\"\n");

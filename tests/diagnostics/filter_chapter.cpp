@@ -69,10 +69,8 @@ const std::vector<Body> bodies = {
      "kind = \"iir\"\nb = [0.01]\na = [1.0, -1.9, 0.998]\ncoefficient_fraction_bits = 7\n"},
     {"a CIC with too large a gain", "kind = \"cic-decimator\"\norder = 8\nfactor = 256\n"},
     {"a CIC that changes no rate", "kind = \"cic-interpolator\"\norder = 3\nfactor = 1\n"},
-    {"an interpolator whose taps are no multiple",
-     "kind = \"fir-interpolator\"\ntaps = [0.5, 0.5, 0.5]\nfactor = 2\n"},
-    {"an interpolator whose taps lack more than one",
-     "kind = \"fir-interpolator\"\ntaps = [0.5, 0.5]\nfactor = 4\n"},
+    {"an interpolator whose taps are no multiple", "kind = \"fir-interpolator\"\ntaps = [0.5, 0.5, 0.5]\nfactor = 2\n"},
+    {"an interpolator whose taps lack more than one", "kind = \"fir-interpolator\"\ntaps = [0.5, 0.5]\nfactor = 4\n"},
     {"a decimator with the words of a CIC", "kind = \"fir-decimator\"\norder = 4\nfactor = 4\n"},
     {"a filter that changes the rate", "kind = \"cic-decimator\"\norder = 4\nfactor = 25\n"},
     {"a median of too many points", "kind = \"median\"\npoints = 5000\n"},
@@ -111,6 +109,7 @@ void show_words(Page& page) {
     made("no tap", "fir", {{"taps", Reals{}}});
     made("a tap that is too large", "fir", {{"taps", Reals{1e40}}});
     made("no section", "biquad-cascade", {{"sections", std::vector<Reals>{}}});
+    made("six numbers of a file of sections", "biquad-cascade", {{"sections_file", Reals(6, 0.1)}});
     made("half a bit", "fir", {{"taps", Reals{1.0}}, {"coefficient_fraction_bits", 1.5}});
     made("too many bits", "fir", {{"taps", Reals{1.0}}, {"coefficient_fraction_bits", std::int64_t{63}}});
     made("no channel", "fir", {{"taps", Reals{1.0}}, {"channels", Reals{}}});

@@ -206,9 +206,9 @@ def plan_tables(path, root):
     return tables
 
 
-def chain_of_plan(path, root=None, other=None):
-    """The chain of a plan file. Files that it names lie under the root, the folder of the plan when left out. `other` are
-    words of the arithmetic that take the place of those of the plan."""
+def case_of_plan(path, root=None, other=None):
+    """A plan file as a case without codes. Files that it names lie under the root, the folder of the plan when left out.
+    `other` are words of the arithmetic that take the place of those of the plan."""
     root = pathlib.Path(root or pathlib.Path(path).parent)
     plan, stages = plan_tables(pathlib.Path(path).absolute(), root), []
     for table in plan["filter"]:
@@ -219,7 +219,12 @@ def chain_of_plan(path, root=None, other=None):
                 words[name] = numbers if name == "taps" else [numbers[i : i + 5] for i in range(0, len(numbers), 5)]
         stages.append((table["kind"], words, plan.get("arithmetic", {}) | table.get("arithmetic", {}) | (other or {})))
     signal = plan["signal"]
-    return make_chain(stages, signal["input"], signal["output"], signal.get("output_per_input", 1.0))
+    return {"input": signal["input"], "output": signal["output"], "stages": stages,
+            "output_per_input": signal.get("output_per_input", 1.0)}  # fmt: skip
+
+
+def chain_of_plan(path, root=None, other=None):
+    return chain_of_case(case_of_plan(path, root, other))
 
 
 if __name__ == "__main__":

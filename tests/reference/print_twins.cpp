@@ -9,8 +9,8 @@
 //   arithmetic rounding text half-up
 //   codes 1 -2 3                                     the end of the case
 //
-// Each case is answered by a line: "codes" and the outputs, or "refused stage N, WORD: problem; remedy". `kinds` in place of a
-// case is answered by the kinds of filter that can be made.
+// Each case is answered by a line: "codes" and the outputs, or "refused stage N, WORD: problem; remedy". `kinds` in
+// place of a case is answered by the kinds of filter that can be made.
 #include <cstdlib>
 #include <iostream>
 #include <sstream>

@@ -1,8 +1,10 @@
-"""The twins of oracle/arithmetic against numpy_twins.py, bit for bit, over random arithmetic descriptions.
+"""The twins of oracle/arithmetic against numpy_twins.py, bit for bit, over random arithmetic descriptions and over the
+plans of the boards' filters, rigs/cw-7/exact.
 
     twins_test.py PROGRAM [SEED]        PROGRAM is print_twins
 """
 import collections
+import pathlib
 import subprocess
 import sys
 import time
@@ -13,6 +15,14 @@ import twin_filters
 
 CASES_PER_KIND = 60
 SHOWN_FAILURES = 12
+RIGS = pathlib.Path(__file__).resolve().parents[2] / "rigs"
+
+
+def cases_of_plans(draw):
+    for path in sorted((RIGS / "cw-7/exact").glob("*.toml")):
+        if path.stem != "cases":
+            case = numpy_twins.case_of_plan(path, RIGS)
+            yield case | {"codes": twin_cases.codes_of(draw, case["input"])}
 
 
 def text_of(value):
@@ -70,6 +80,7 @@ def main():
     known = ask(program, "kinds\n")[0].split()
     kinds = [kind for kind in numpy_twins.STRUCTURES if kind in known]
     cases = [twin_cases.random_case(draw, kinds, kind) for kind in kinds for _ in range(CASES_PER_KIND)]
+    cases += cases_of_plans(draw)
     lines = ask(program, "".join(message_of(case) for case in cases))
     failures, shown, covered = len(lines) != len(cases), 0, collections.Counter()
     for number, (case, line) in enumerate(zip(cases, lines)):

@@ -13,6 +13,7 @@
 #include "rigs/filters/moving_average.h"
 #include "rigs/filters/moving_average_offset.h"
 #include "rigs/virtual-board/clean_averages.hpp"
+#include "rigs/virtual-board/clean_decisions.hpp"
 #include "rigs/virtual-board/clean_filters.hpp"
 #include "rigs/virtual-board/filter_set.hpp"
 
@@ -51,7 +52,7 @@ std::vector<std::uint8_t> in_blocks(const FilterParts& parts, std::vector<std::u
 
 TEST_CASE("filters: any split into blocks gives the same codes", "[rigs]") {
     AverageSetting average;
-    for (const FilterParts& parts : all_filters({}, average)) {
+    for (const FilterParts& parts : every_filter({}, average)) {
         if (is_float(parts.format)) continue;  // noise of its bits is no signal
         INFO(parts.name << ", seed " << seed);
         const auto words = noise(parts, 1000);

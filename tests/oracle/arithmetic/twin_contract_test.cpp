@@ -273,3 +273,18 @@ TEST_CASE("twin: none without a rounding, nor for sums beyond 126 bits that nobo
     CHECK(wide(std::nullopt) == nullptr);
     CHECK(wide(64) != nullptr);
 }
+
+TEST_CASE("twin: a transposed section is computed in the narrowest accumulator that holds one of its products",
+          "[twin]") {
+    // 1.1 2^14 2^15 lies between 2^29 and 2^30: 31 bits hold it, and the states have as many.
+    const auto with = [](int bits) {
+        return describe({biquads({section}, {number("coefficient_fraction_bits", 14), word("rounding", "floor"),
+                                             word("structure", "transposed-2"), number("accumulator_bits", bits)})},
+                        *sample_format("q15"), *sample_format("q15"), 1.0);
+    };
+    REQUIRE(with(31).described);
+    CHECK(with(31).described->stages[0].state == Word{31, 29, Overflow::saturate});
+    CHECK(make_twin(*with(31).described) != nullptr);
+    REQUIRE(with(30).problem);
+    CHECK(with(30).problem->error.remedy == "accumulator_bits = 31 would do for one; a sum needs more");
+}

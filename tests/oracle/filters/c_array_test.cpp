@@ -37,6 +37,8 @@ const std::string order = "write the numbers in their order, between commas";
 TEST_CASE("c array: integers in every base, with suffixes, signs, parentheses and casts", "[oracle]") {
     CHECK(numbers_of("const int32_t h[] = {1, -2, +3, 0x10, 010, 0b101, 7u, 8L, 9ull, 0XfFU};") ==
           Numbers{1, -2, 3, 16, 8, 5, 7, 8, 9, 255});
+    CHECK(numbers_of("constexpr double h[] = {16'384, 0x40'00, 1'0.2'5};") == Numbers{16384, 16384, 10.25});
+    CHECK(refusal("double h[] = {0x'1};").starts_with("at 0x'1};: \"0x'1\" is no number in C"));
     CHECK(numbers_of("int16_t h[4] = {(1), (-2), -(3), - -4};") == Numbers{1, -2, -3, 4});
     CHECK(numbers_of("int16_t h[] = {(int16_t)0x7FFF, (int16_t)0x8000, (int16_t) -5, (q15_t)(6), INT16_C(7)};") ==
           Numbers{32767, -32768, -5, 6, 7});

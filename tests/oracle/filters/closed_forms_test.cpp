@@ -83,6 +83,19 @@ TEST_CASE("group delay: stages add up", "[filters][closed-forms]") {
     CHECK(delay({}, 0.2) == 0.0);
 }
 
+TEST_CASE("group delay and phase: a recursion by b and a has those of the same section", "[filters][closed-forms]") {
+    const FilterChain section = one({0.3, -0.2, 0.5, -1.1, 0.7});
+    const FilterChain recursion{stage(Recursion{{0.3, -0.2, 0.5}, {1.0, -1.1, 0.7}})};
+    std::vector<double> grid;
+    for (int i = 0; i <= 50; ++i) grid.push_back(0.01 * i);
+    const auto phases = unwrapped_phase(section, grid), same = unwrapped_phase(recursion, grid);
+    for (std::size_t i = 0; i < grid.size(); ++i) {
+        CHECK_THAT(delay(recursion, grid[i]), Catch::WithinAbs(delay(section, grid[i]), 1e-12));
+        CHECK_THAT(same[i], Catch::WithinAbs(phases[i], 1e-12));
+    }
+    CHECK(std::isnan(delay({stage(Median{3})}, 0.1)));
+}
+
 TEST_CASE("phase: wrapped it is the response's, unwrapped it runs on", "[filters][closed-forms]") {
     const FilterChain chain{stage(MovingAverage{16}), stage(BiquadCascade{{{1.0, 0.0, 0.0, -1.2, 0.9}}})};
     for (const double f : {0.01, 0.1, 0.22, 0.4}) {

@@ -197,7 +197,9 @@ TEST_CASE("coefficient file: sections stand in any layout", "[oracle]") {
         "plan file_layout: file_layout = \"b0 b1 b2 a1 a2\", and the file calls its columns \"a1 a2 b0 b1 b2\" / leave "
         "file_layout out, or correct the file");
     words = sections();
-    CHECK(refusal("t.txt", "1\n0\n0\n1\n0\n0\n", words) ==
+    CHECK(refusal("t.txt", "1\n0\n0\n1\n0\n0\n", words).find("say which: file_layout = \"b0 0 b1 b2 a1 a2\"") !=
+          std::string::npos);
+    CHECK(refusal("t.txt", "1\n2\n0\n1\n0\n0\n", words) ==
           "plan sections_file: sections_file: 6 numbers are no whole number of sections / a section has 5 numbers, b0 "
           "b1 b2 "
           "a1 a2; where it has 6, say which: file_layout = \"b0 b1 b2 a0 a1 a2\"");

@@ -91,6 +91,9 @@ TEST_CASE("node path: stages that are no cascades have one node, and a comb has 
     CHECK(h(path_to_output(chain, {0, 0, true})) == h(path_to_output(chain, {0})));
     CHECK(h(path_to_output(chain, {2})) == h({chain[3]}));
     CHECK(h(path_to_output(chain, {2, 0, true})) == h({stage(Comb{3, 1.0, 0.0, -0.4}), chain[3]}));
+    const FilterChain recursion{stage(Recursion{{0.5, 0.1}, {1.0, -0.6, 0.2, 0.1}}), chain[3]};
+    CHECK(h(path_to_output(recursion, {0, 0, true})) == h({stage(Recursion{{1.0}, {1.0, -0.6, 0.2, 0.1}}), chain[3]}));
+    CHECK(h(path_to_output(recursion, {0})) == h({chain[3]}));
     CHECK(h(path_from_section(chain, {2})) == h({chain[2], chain[3]}));
     CHECK(h(path_from_section(chain, {0})) == h(chain));
     CHECK(path_to_output(chain, {3}).empty());  // the output itself
