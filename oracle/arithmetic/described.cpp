@@ -128,6 +128,13 @@ Error is_missing(std::string_view word, std::string problem, std::string remedy)
 }
 
 std::optional<Error> missing_in(const DescribedStage& stage) {
+    if (stage.stage.initial != Initial::zeros) {
+        return is_missing("initial", "a start other than zeros has no twin",
+                          "leave initial out, or judge by an error rule");
+    }
+    if (stage.number == NumberKind::float32 && family_of(stage.stage) == Family::cic) {
+        return is_missing("number", "a cic in float32 has no twin", "its registers wrap: give number = \"integer\"");
+    }
     if (!stage.coefficients_are_said) {
         return is_missing("coefficient_fraction_bits", "coefficient_fraction_bits is not said",
                           "say as which multiples of 2^-n the coefficients are stored");

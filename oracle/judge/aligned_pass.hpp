@@ -37,6 +37,8 @@ public:
     std::optional<RuleVerdict> verdict(const Rule& rule, const RailWatch* rails) const;
     /// Every error rule passes; true when the case has none.
     bool error_rules_pass(const RailWatch* rails) const;
+    /// Some rule asks for it, and every sample equals the twin.
+    bool is_exact() const { return exact_ && exact_->is_exact(); }
     bool has_error_rules() const { return !error_rules_.empty(); }
 
 private:

@@ -88,7 +88,9 @@ ChannelJudge::Latency ChannelJudge::latency_found() const {
     const bool is_clear = lags_->residual_at(measured) * 100.0 <= lags_->residual_at(expected_lag_);
     const bool meets_limits =
         second_->pass.has_error_rules() && second_->pass.error_rules_pass(second_->reference.rails());
-    return is_clear || meets_limits ? Latency::other : Latency::fits_nowhere;
+    if (is_clear || meets_limits) return Latency::other;
+    // Codes that wrap can fit another lag better by squares; equal to the bit they fit where they are.
+    return pass_.is_exact() ? Latency::as_expected : Latency::fits_nowhere;
 }
 
 std::optional<RuleVerdict> ChannelJudge::latency_verdict(const Rule& rule) const {
@@ -106,7 +108,7 @@ std::optional<RuleVerdict> ChannelJudge::latency_verdict(const Rule& rule) const
             break;
         case Latency::as_expected:
             verdict.verdict = Verdict::pass;
-            figure.value = lags_->best_lag;
+            figure.value = expected_lag_;
             break;
         case Latency::other:
             verdict.verdict = Verdict::fail;

@@ -18,6 +18,8 @@ public:
     void add(std::int64_t first_index, std::span<const Code> stimulus, std::span<const Code> twin,
              std::span<const Code> response);
     RuleVerdict verdict(const Rule& rule) const;
+    /// Some sample was compared, and all are equal.
+    bool is_exact() const { return samples_ > 0 && differing_ == 0; }
 
 private:
     SampleFormat output_;

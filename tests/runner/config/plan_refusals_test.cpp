@@ -98,9 +98,19 @@ TEST_CASE("plan: an unknown key is refused with the nearest known one", "[config
             "known here: " + listed(words_of(signal_recipe()), " and "));
 }
 
-TEST_CASE("plan: words of later versions are unknown in this one", "[config]") {
-    refused("max_lsb = 1.5", "max_lsb = \"derived\"", 16, "\"derived\"",
-            "max_lsb is the string \"derived\", wanted a number", "write max_lsb = 0.5, without quotation marks");
+TEST_CASE("plan: a limit is a number or the word derived", "[config]") {
+    CHECK(plan_problems(with(good_plan, "max_lsb = 1.5", "max_lsb = \"derived\"")).empty());
+    refused("max_lsb = 1.5", "max_lsb = \"derive\"", 16, "\"derive\"", "max_lsb = \"derive\" is not known",
+            "did you mean \"derived\"?");
+    refused("max_lsb = 1.5", "max_lsb = \"guess\"", 16, "\"guess\"", "max_lsb = \"guess\" is not known",
+            "give \"derived\"");
+}
+
+TEST_CASE("plan: arithmetic that cannot be is refused at its word, the stage's own or that of every stage",
+          "[config]") {
+    const std::string words = "[filter.arithmetic]\n";
+    refused("taps = [0.25, 0.5, 0.25]", "taps = [0.25, 0.5, 0.25]\n" + words + "state_bits = 32", 14, "32",
+            "state_bits says nothing of a fir", "leave it out");
 }
 
 TEST_CASE("plan: a wrong type says what was found and what is wanted", "[config]") {
@@ -414,9 +424,10 @@ TEST_CASE("plan: a file that it names is confined, and its own lines are shown",
     const std::string remedy =
         "  write one number a line, or the same count on every line between commas; with a decimal point; # starts a "
         "comment\n";
-    CHECK(said("0.5\n 0,25\n") ==
-          "./taps.txt:2:2: \"0,25\" is not one number: has it a decimal comma?\n     0,25\n     ^\n  write numbers with "
-          "a decimal point, 0.5\n");
+    CHECK(
+        said("0.5\n 0,25\n") ==
+        "./taps.txt:2:2: \"0,25\" is not one number: has it a decimal comma?\n     0,25\n     ^\n  write numbers with "
+        "a decimal point, 0.5\n");
     CHECK(said("0.5 0.25\n").empty());
     CHECK(said("0x10\n") == "./taps.txt:1:1: \"0x10\" is not one number\n    0x10\n    ^\n" + remedy);
     CHECK(said("+-1\n") == "./taps.txt:1:1: \"+-1\" is not one number\n    +-1\n    ^\n" + remedy);

@@ -86,6 +86,10 @@ void check_same(const Plan& a, const Plan& b) {
         for (std::size_t r = 0; r < one.rules.size(); ++r) check_same(one.rules[r], other.rules[r]);
         for (int channel = 1; channel <= a.signal.channels; ++channel) {
             const FilterChain chain = chain_of(a, one, channel), other_chain = chain_of(b, other, channel);
+            if (!is_linear(chain)) {  // nothing has a response there
+                CHECK(!is_linear(other_chain));
+                continue;
+            }
             for (const double frequency : {0.0, 0.01, 0.13, 0.37, 0.5})
                 CHECK(response_at(chain, frequency) == response_at(other_chain, frequency));
         }
@@ -259,7 +263,12 @@ TEST_CASE("random plans: read, printed and read again they are the same", "[conf
         }
     };
     for (const auto* list : {&stimulus_recipes(), &filter_recipes(), &rule_recipes()}) {
-        for (const Recipe& recipe : *list) look(recipe);
+        for (const Recipe& recipe : *list) {
+            // No plan has a filter that changes the rate: the wire returns a sample for each, and admission refuses it.
+            const bool changes_rate = recipe.name.find("decimator") != recipe.name.npos ||
+                                      recipe.name.find("interpolator") != recipe.name.npos;
+            if (!changes_rate) look(recipe);
+        }
     }
     for (const Recipe* recipe : {&plan_recipe(), &signal_recipe(), &arithmetic_recipe(), &case_recipe()}) look(*recipe);
     INFO("words that no plan has:\n" << unused);
