@@ -46,7 +46,8 @@ PredictedPoint point_at(const FilterChain& chain, const FilterChain& declared, d
                          std::nullopt,
                          std::nullopt};
     // At a zero of the response what is left is rounding, of which no phase can be told.
-    if (point.design_db > -300.0) point.phase_degrees = std::arg(design) * degrees;
+    if (!(point.design_db > -280.0)) return point;
+    point.phase_degrees = std::arg(design) * degrees;
     if (!changes_rate(chain)) {
         const double delay = group_delay_samples(chain, cycles_per_sample);
         if (std::isfinite(delay)) point.group_delay_samples = delay;

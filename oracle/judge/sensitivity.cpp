@@ -112,7 +112,8 @@ Sensitivity sensitivity(const Plan& plan, const std::vector<std::size_t>& cases,
         return result;
     }
     const std::vector<ArithmeticChange> changes = changes_of(plan);
-    for (const ArithmeticChange& change : changes) result.changes.push_back({change.name, ChangeSeen::Answer::same, {}, {}, 0, 0.0});
+    for (const ArithmeticChange& change : changes)
+        result.changes.push_back({change.name, ChangeSeen::Answer::same, {}, {}, 0, 0.0});
     const auto channels = static_cast<std::size_t>(plan.signal.channels);
     for (const std::size_t index : cases) {
         if (!go_on()) break;
@@ -123,6 +124,10 @@ Sensitivity sensitivity(const Plan& plan, const std::vector<std::size_t>& cases,
         std::vector<Code> sent(static_cast<std::size_t>(length) * channels);
         fill_case_codes(plan, the_case, 0, sent);
         const std::vector<Code> declared = twin_response(plan, the_case, sent);
+        if (result.failing_rule.empty()) {
+            result.failing_rule = failing_rule(plan, the_case, declared);
+            if (!result.failing_rule.empty()) result.failing_case = the_case.name;
+        }
         for (std::size_t i = 0; i < changes.size(); ++i) {
             ChangeSeen& seen = result.changes[i];
             if (seen.answer == ChangeSeen::Answer::seen) continue;

@@ -29,6 +29,9 @@ struct Sensitivity {
     std::string unknown;       ///< why nothing can be said ("rounding is not said"); "" otherwise
     std::int64_t samples = 0;  ///< looked at
     bool is_cut = false;       ///< of long cases only the first sensitivity_samples were
+    /// A firmware that computes as promised fails this rule in this case, so nothing that is seen there tells anything
+    /// of a change; "" when all pass.
+    std::string failing_rule = {}, failing_case = {};
 };
 
 inline constexpr std::int64_t sensitivity_samples = std::int64_t{1} << 17;

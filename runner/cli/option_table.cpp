@@ -115,8 +115,9 @@ const std::vector<CommandSpec>& command_table() {
          "Keeps the responses of a good run as the baseline that its plan's unchanged rules compare with",
          "halflsb accept .halflsb/20261201T093000Z-cw7"},
         {Command::predict, "predict", "PLAN", "",
-         "Reads the files and tells on paper what to expect: the filter's response, the time on the wire; needs no "
-         "board",
+         "Reads the files and tells on paper what to expect: response, error bounds, headroom, what the rules would "
+         "see, "
+         "the time on the wire; needs no board",
          "halflsb predict cw7.toml --rig bench.toml"},
         {Command::ports, "ports", "", "", "Lists the serial ports with their stable names", "halflsb ports"},
     };

@@ -162,7 +162,11 @@ Json sight_json(const PredictedSight& sight) {
                            {"differing_samples", change.differing},
                            {"largest", number_json(change.largest_lsb)}});
     }
+    Json promise_fails = nullptr;
+    if (!sight.sensitivity.failing_rule.empty())
+        promise_fails = {{"rule", sight.sensitivity.failing_rule}, {"case", sight.sensitivity.failing_case}};
     return {{"unknown", text_json(sight.sensitivity.unknown)},
+            {"promise_fails", std::move(promise_fails)},
             {"rounding_is_assumed", sight.rounding_is_assumed},
             {"has_exact_rule", sight.has_exact_rule},
             {"cases", sight.cases},

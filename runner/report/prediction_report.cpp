@@ -11,7 +11,7 @@ namespace halflsb {
 
 namespace {
 
-std::string decibels(double gain) { return gain > -300.0 ? fixed_text(gain, 3) : "none"; }
+std::string decibels(double gain) { return gain > -280.0 ? fixed_text(gain, 3) : "none"; }
 
 std::string channels_text(const std::vector<int>& channels) {
     std::string text;
@@ -82,7 +82,8 @@ std::string filter_text(const PredictedFilter& filter, const Signal& signal, con
     text += ", largest pole radius " + rounded_text(filter.largest_pole_radius, 6);
     text += ", sum of |h| " + rounded_text(filter.l1_norm) + "\n";
     if (!filter.response.empty()) {
-        text += "         gain at 0 Hz " + decibels(filter.dc_gain_db) + " dB";
+        text += filter.dc_gain_db > -280.0 ? "         gain at 0 Hz " + decibels(filter.dc_gain_db) + " dB"
+                                           : std::string("         nothing comes through at 0 Hz");
         if (filter.corner_hz) text += ", 3 dB less at " + rounded_text(*filter.corner_hz) + " Hz";
         text += "\n";
     }
@@ -122,6 +123,13 @@ std::string sight_text(const PredictedSight& sight, const Signal& signal, const 
                                "rules    what they would see of a firmware that decided otherwise" +
                                    std::string(sight.rounding_is_assumed ? ", half-up taken for the rounding" : ""),
                                0);
+    if (!told.failing_rule.empty()) {
+        text += wrapped(style,
+                        "warning: a firmware that computes as promised fails " + told.failing_rule + " in \"" +
+                            printable(told.failing_case) +
+                            "\", so what is seen there tells nothing; write \"derived\" for its limits, or wider ones",
+                        2);
+    }
     Table table{{{"change", false, 0}, {"rules of this plan", false, 0}}, {}, 2};
     bool some_unseen = false;
     for (const ChangeSeen& change : told.changes) {
