@@ -20,22 +20,29 @@ public:
         if (chain.stages.back().out.is_float) largest_ = static_cast<double>(std::numeric_limits<float>::max());
     }
 
+    std::size_t outputs_for(std::size_t inputs) const override {
+        for (const ElementFilter& element : elements_) inputs = element.outputs_for(inputs);
+        return inputs;
+    }
+
     void reset() override {
         for (ElementFilter& element : elements_) element.reset();
     }
 
     void process(std::span<const double> in, std::span<double> out) override {
         for (std::size_t done = 0; done < in.size(); done += piece_samples) {
-            const std::size_t count = std::min(piece_samples, in.size() - done);
-            process_piece(in.subspan(done, count), out.subspan(done, count));
+            const auto piece = in.subspan(done, std::min(piece_samples, in.size() - done));
+            const std::size_t count = outputs_for(piece.size());
+            process_piece(piece, out.first(count));
+            out = out.subspan(count);
         }
     }
 
 private:
     void process_piece(std::span<const double> in, std::span<double> out) {
         from_.assign(in.begin(), in.end());
-        for (auto* series : {&sums_, &held_, &to_}) series->resize(in.size());
         for (ElementFilter& element : elements_) {
+            for (auto* series : {&sums_, &held_, &to_}) series->resize(element.outputs_for(from_.size()));
             element.process(from_, sums_, held_, to_);
             from_.swap(to_);
         }

@@ -26,15 +26,19 @@ std::optional<ValueEnds> ends_of(const Word& word) {
 ElementFilter::ElementFilter(const ChainElement& element) : exact_(make_filter(element.exact)) {
     const DescribedStage& stage = *element.stage;
     if (element.is_last_of_stage && !stage.out.is_float) out_ends_ = ends_of(stage.out.word);
-    if (!element.holds_one_state() || !element.is_first_order() || stage.state.overflow != Overflow::saturate) return;
+    if (!element.holds_one_state() || !element.is_first_order() || element.forward.size() > 3 ||
+        stage.state.overflow != Overflow::saturate || stage.stage.initial != Initial::zeros) {
+        return;
+    }
     state_ends_ = ends_of(stage.state);
     feeds_back_clipped_ = state_ends_.has_value();
-    if (const BiquadSection* s = element.section()) {
-        b0_ = s->b0, b1_ = s->b1, b2_ = s->b2, a_ = s->a1;
+    if (const Comb* comb = element.comb()) {
+        b0_ = comb->direct, b1_ = comb->forward, a_ = comb->feedback;
+        delay_ = static_cast<std::size_t>(comb->delay_samples);
     } else {
-        const auto& comb = std::get<Comb>(element.exact.front().design);
-        b0_ = comb.direct, b1_ = comb.forward, a_ = comb.feedback;
-        delay_ = static_cast<std::size_t>(comb.delay_samples);
+        const auto at = [](const std::vector<double>& list, std::size_t k) { return k < list.size() ? list[k] : 0.0; };
+        b0_ = at(element.forward, 0), b1_ = at(element.forward, 1), b2_ = at(element.forward, 2);
+        a_ = at(element.feedback, 0);
     }
     reset();
 }
@@ -46,6 +50,8 @@ void ElementFilter::reset() {
     place_ = 0;
     older_in_ = 0.0;
 }
+
+std::size_t ElementFilter::outputs_for(std::size_t inputs) const { return exact_->outputs_for(inputs); }
 
 void ElementFilter::process(std::span<const double> in, std::span<double> sums, std::span<double> held,
                             std::span<double> out) {

@@ -29,8 +29,10 @@ class ElementFilter {
 public:
     explicit ElementFilter(const ChainElement& element);
     void reset();
+    std::size_t outputs_for(std::size_t inputs) const;
     /// `sums`: what the sum comes to before anything holds it. `held`: what a loop feeds back. `out`: what leaves the
-    /// element. Sizes are equal; the spans do not overlap.
+    /// element. These have outputs_for(in.size())
+    /// values; no spans overlap.
     void process(std::span<const double> in, std::span<double> sums, std::span<double> held, std::span<double> out);
 
 private:

@@ -3,8 +3,10 @@
 #include <algorithm>
 #include <cmath>
 
+#include "oracle/arithmetic/float_points.hpp"
 #include "oracle/arithmetic/path_sums.hpp"
 #include "oracle/arithmetic/reference_error.hpp"
+#include "oracle/filters/rates.hpp"
 
 namespace halflsb {
 
@@ -38,12 +40,12 @@ public:
         bound_.upper += term.upper;
         worst_bias_lower_ += term.bias_lower;
         worst_bias_upper_ += term.bias_upper;
-        term.is_statistical = use_.noise_like && is_far_above(point);
+        term.is_statistical = use_.noise_like && sums.is_one_response && is_far_above(point);
         if (term.is_statistical) {
             add_noise(point, sums, term);
         } else {
             all_statistical_ = false;
-            any_rms_ += point.error.largest() * sums.l1();
+            any_rms_ += product(point.error.largest(), sums.l1());
         }
         bias_lower_ += term.bias_lower;
         bias_upper_ += term.bias_upper;
@@ -78,15 +80,25 @@ private:
         term.noise_gain = sums.squares;
         term.dc_gain = sums.dc;
         const RoundingError& e = point.error;
+        if (!sums.is_one_response) {
+            term.upper = product(e.largest(), sums.l1());
+            term.lower = -term.upper;
+            term.bias_lower = term.lower;
+            term.bias_upper = term.upper;
+            term.formula = "error x largest gain of what follows (Jackson 1970)";
+            return term;
+        }
         term.lower = product(e.lowest, sums.positive) + product(e.highest, sums.negative);
         term.upper = product(e.highest, sums.positive) + product(e.lowest, sums.negative);
-        term.bias_lower = e.lowest * sums.step_positive + e.highest * sums.step_negative;
-        term.bias_upper = e.highest * sums.step_positive + e.lowest * sums.step_negative;
-        term.formula = "error x sum of h above and below 0 (Jackson 1970)";
+        term.bias_lower = product(e.lowest, sums.step_positive) + product(e.highest, sums.step_negative);
+        term.bias_upper = product(e.highest, sums.step_positive) + product(e.lowest, sums.step_negative);
+        term.formula = point.is_float ? "u x largest number (Higham, chapter 3) x sum |h|"
+                                      : "error x sum of h above and below 0 (Jackson 1970)";
         return term;
     }
 
     bool is_far_above(const RoundingPoint& point) const {
+        if (!is_linear(point.from_input) || changes_rate(point.from_input)) return false;
         const double level = use_.input_rms * std::sqrt(noise_power_gain(point.from_input)) * point.factor;
         return level >= bits_above * point.step;
     }
@@ -130,8 +142,13 @@ ErrorBound derive(const DescribedChain& chain, const BoundUse& use) {
     ErrorBound bound;
     bound.step = step_of(chain.stages.back().out.word);
     Budget budget(use, bound);
+    const Port& in = chain.stages.front().in;
+    const double largest_input = use.largest_input > 0.0 ? use.largest_input : largest_value(in);
     for (const RoundingPoint& point : rounding_points(chain, exact)) budget.add(point, path_of(point, exact.stages));
-    budget.finish(reference_error(chain, exact));
+    for (const RoundingPoint& point : float_points(chain, exact, {use.samples, largest_input})) {
+        budget.add(point, path_of(point, exact.stages));
+    }
+    budget.finish(reference_error(chain, exact, largest_input));
     return bound;
 }
 

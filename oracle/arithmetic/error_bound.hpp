@@ -2,9 +2,10 @@
 // where each comes from. docs/methods.md, "Derived limits", has the formulas and their sources.
 //
 // Largest error: proven for any input, as long as no node overflows (rail_watch.hpp) and the coefficients are those
-// described. rms and bias: proven, too, where the stimulus is no noise; where it is, by the usual model that remainders
-// are uniform and independent (Widrow 1956; Jackson 1970; Barnes, Tran and Leung 1985), exceeded with a probability
-// below alpha. Values are those of the chain's input; `step` is worth an output LSB.
+// described; of float32 as long as no input is larger than said. Stages start from zeros: what a state that was
+// preloaded may be off by is not in it. rms and bias: proven, too, where the stimulus is no noise; where it is, by the
+// usual model that remainders are uniform and independent (Widrow 1956; Jackson 1970; Barnes, Tran and Leung 1985),
+// exceeded with a probability below alpha. Values are those of the chain's input; `step` is worth an output LSB.
 #pragma once
 
 #include <cstdint>
@@ -19,7 +20,8 @@ struct BoundUse {
     std::int64_t samples = 4096;  ///< that are judged, from the start on, states being zero before
     bool noise_like = false;      ///< the stimulus is white noise of input_rms (a value)
     double input_rms = 0.0;
-    double alpha = 1e-6;  ///< that rms or bias is exceeded all the same
+    double largest_input = 0.0;  ///< |value| that the stimulus reaches, for float32; 0: full scale, 1.0 of f32
+    double alpha = 1e-6;         ///< that rms or bias is exceeded all the same
 };
 
 /// What one point does to the output.

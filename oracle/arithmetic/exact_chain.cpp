@@ -15,6 +15,14 @@ void store_as_float(FilterStage& stage, Structure structure) {
         for (double& tap : fir->taps) tap = as_float(tap);
     } else if (auto* comb = std::get_if<Comb>(&stage.design)) {
         for (double* c : {&comb->direct, &comb->forward, &comb->feedback}) *c = as_float(*c);
+    } else if (auto* recursion = std::get_if<Recursion>(&stage.design)) {
+        for (auto* list : {&recursion->b, &recursion->a}) {
+            for (double& c : *list) c = as_float(c);
+        }
+    } else if (auto* decimator = std::get_if<FirDecimator>(&stage.design)) {
+        for (double& tap : decimator->taps) tap = as_float(tap);
+    } else if (auto* interpolator = std::get_if<FirInterpolator>(&stage.design)) {
+        for (double& tap : interpolator->taps) tap = as_float(tap);
     } else if (auto* cascade = std::get_if<BiquadCascade>(&stage.design)) {
         const bool has_pole_of_k = structure == Structure::difference || structure == Structure::leak;
         for (BiquadSection& s : cascade->sections) {
@@ -41,7 +49,11 @@ FilterChain exact_stages(const DescribedStage& stage) {
     FilterChain stages{exact};
     if (const auto* average = std::get_if<MovingAverage>(&exact.design)) {
         const double gain = gain_of_reciprocal(stage, average->points);
-        if (gain != 1.0) stages.push_back(FilterStage{Fir{{gain}}, std::nullopt, {}, "fir", {}});
+        if (gain != 1.0) {
+            FilterStage scale;
+            scale.design = Fir{{gain}};
+            stages.push_back(scale);
+        }
     }
     return stages;
 }

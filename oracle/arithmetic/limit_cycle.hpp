@@ -1,8 +1,8 @@
 // What remains at the output when the input has ended: limit cycles and dead bands.
 //
 // Once no word overflows any more, what a filter returns on zeros is what its roundings add up to: the same sums as the
-// bound of the largest error, without the points that round nothing when their input is silent. That is proven. Estimates
-// of the handbooks are told as such and are never a limit: the searches beside them exceed some.
+// bound of the largest error, without the points that round nothing when their input is silent. That is proven.
+// Estimates of the handbooks are told as such and are never a limit: the searches beside them exceed some.
 #pragma once
 
 #include <cstdint>
@@ -30,8 +30,8 @@ struct SearchedSilence {
 };
 
 struct SilenceBound {
-    double step = 1.0;                 ///< an output LSB as a value
-    double lower = 0.0, upper = 0.0;   ///< proven, as values; may be infinite
+    double step = 1.0;                               ///< an output LSB as a value
+    double lower = 0.0, upper = 0.0;                 ///< proven, as values; may be infinite
     std::int64_t lowest_code = 0, highest_code = 0;  ///< the codes within, as far as 62 bits go
     std::optional<SearchedSilence> searched;         ///< exact, where the states within the bound could all be tried
     std::vector<DeadBandEstimate> estimates;

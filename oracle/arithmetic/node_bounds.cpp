@@ -1,5 +1,8 @@
 #include "oracle/arithmetic/node_bounds.hpp"
 
+#include "oracle/arithmetic/float_points.hpp"
+#include "oracle/arithmetic/reference_error.hpp"
+
 namespace halflsb {
 
 namespace {
@@ -18,7 +21,13 @@ bool is_before(const RoundingPoint& point, const ChainElement& element) {
 }  // namespace
 
 NodeBounds::NodeBounds(const DescribedChain& chain)
-    : exact_(exact_chain(chain)), points_(rounding_points(chain, exact_)) {}
+    : exact_(exact_chain(chain)), points_(rounding_points(chain, exact_)) {
+    // Of no record is a length known here; none is longer.
+    constexpr std::int64_t longest = std::int64_t{1} << 24;
+    for (RoundingPoint& point : float_points(chain, exact_, {longest, largest_value(chain.stages.front().in)})) {
+        points_.push_back(std::move(point));
+    }
+}
 
 FilterChain NodeBounds::cut_behind(const ChainElement& element) const {
     FilterChain cut(exact_.stages.begin(), exact_.stages.begin() + static_cast<std::ptrdiff_t>(element.node.stage) + 1);
@@ -31,7 +40,7 @@ FilterChain NodeBounds::cut_behind(const ChainElement& element) const {
 double NodeBounds::error_through(const FilterChain& cut, const ChainElement& element, bool with_loop,
                                  bool with_output) const {
     // A fir or moving average errs at its result and nowhere before.
-    const bool errs_at_result = element.section() == nullptr && !element.is_recursive();
+    const bool errs_at_result = !element.has_sums() && element.comb() == nullptr;
     double error = 0.0;
     for (const RoundingPoint& point : points_) {
         bool counts = is_before(point, element);
@@ -48,18 +57,24 @@ double NodeBounds::error_at_sum(const ChainElement& element, bool with_output) c
     return error_through(cut_behind(element), element, true, with_output);
 }
 
-double NodeBounds::error_at_state(const ChainElement& element) const {
+FilterChain NodeBounds::cut_at_state(const ChainElement& element) const {
     FilterChain cut = cut_behind(element);
-    BiquadSection& s = std::get<BiquadCascade>(cut.back().design).sections.back();
-    s = {1.0, 0.0, 0.0, s.a1, s.a2};
-    return error_through(cut, element, false, false);
+    const FilterChain loop = element.loop();
+    if (auto* cascade = std::get_if<BiquadCascade>(&cut.back().design)) {
+        cascade->sections.back() = std::get<BiquadCascade>(loop.front().design).sections.front();
+    } else {
+        cut.back().design = loop.front().design;
+    }
+    return cut;
+}
+
+double NodeBounds::error_at_state(const ChainElement& element) const {
+    return error_through(cut_at_state(element), element, false, false);
 }
 
 double NodeBounds::gain_to_sum(const ChainElement& element) const { return l1_norm(cut_behind(element)); }
 
-double NodeBounds::gain_to_state(const ChainElement& element) const {
-    return l1_norm(path_to_state(exact_.stages, element.node));
-}
+double NodeBounds::gain_to_state(const ChainElement& element) const { return l1_norm(cut_at_state(element)); }
 
 bool NodeBounds::errs_before(const ChainElement& element) const {
     for (const RoundingPoint& point : points_) {

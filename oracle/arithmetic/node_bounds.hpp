@@ -24,6 +24,7 @@ public:
 
 private:
     FilterChain cut_behind(const ChainElement& element) const;
+    FilterChain cut_at_state(const ChainElement& element) const;
     double error_through(const FilterChain& cut, const ChainElement& element, bool with_loop, bool with_output) const;
 
     ExactChain exact_;

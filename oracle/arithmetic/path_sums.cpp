@@ -4,6 +4,7 @@
 #include <cmath>
 
 #include "oracle/filters/impulse_run.hpp"
+#include "oracle/filters/rates.hpp"
 
 namespace halflsb {
 
@@ -62,6 +63,17 @@ private:
 }  // namespace
 
 PathSums path_sums(const FilterChain& path, std::int64_t samples, std::size_t lags) {
+    if (!is_linear(path) || changes_rate(path)) {
+        // No one impulse response: what is known is how large the output of something within -1 .. 1 can get.
+        PathSums known;
+        known.positive = known.step_positive = l1_norm(path);
+        known.negative = known.step_negative = -known.positive;
+        known.dc = known.positive;
+        known.squares = known.step_squares = known.positive * known.positive;
+        known.autocorrelation.assign(std::max<std::size_t>(lags, 1), known.squares);
+        known.is_one_response = false;
+        return known;
+    }
     Sums sums(std::max<std::int64_t>(samples, 1), lags);
     ImpulseRun run(path);
     double rest = no_limit;

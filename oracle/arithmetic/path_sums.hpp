@@ -19,7 +19,11 @@ struct PathSums {
     /// Means over the first `samples` of s where it is positive, where it is negative, and of s^2.
     double step_positive = 0.0, step_negative = 0.0, step_squares = 0.0;
 
-    double l1() const { return positive - negative; }
+    /// False around a median and where the rate changes: then positive and -negative are the largest output, of either
+    /// sign, for inputs within -1 .. 1, and the others no smaller than what they stand for.
+    bool is_one_response = true;
+
+    double l1() const { return is_one_response ? positive - negative : positive; }
 };
 
 /// Runs the path until its rest is proven to be below 1e-12 of sum |h| (impulse_run.hpp), at most 2^22 samples; `lags`

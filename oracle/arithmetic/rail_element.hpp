@@ -17,6 +17,7 @@ struct ElementInput {
     double full_scale = 0.0;  ///< of the chain's input
 };
 
+/// Elements that change the rate, and medians, are looked at at their output alone.
 class RailElement {
 public:
     RailElement(const ChainElement& element, const NodeBounds& bounds, const ElementInput& input, bool is_only_one,
@@ -28,31 +29,34 @@ public:
     ElementInput output() const { return output_; }
 
     void reset();
-    /// reached[n][node]... node index + 1 of the gravest rail that sample n may reach, 0 for none. `out` may be `in`'s
-    /// place in the chain, not the same memory.
+    std::size_t outputs_for(std::size_t inputs) const { return filter_.outputs_for(inputs); }
+    /// reached[n]: 1 + index of the gravest node that output n of the element may reach, 0 for none. No spans overlap.
     void process(std::span<const double> in, std::span<double> out, std::span<std::uint8_t> reached);
 
 private:
     /// What a rail looks at.
     enum class Source {
-        sum,   ///< before anything holds it
-        held,  ///< the sum as a loop feeds it back
-        input,
+        sum,          ///< before anything holds it
+        held,         ///< the sum as a loop feeds it back
+        input,        //
         window,       ///< the sum of a moving average, not divided
         window_rest,  ///< less the oldest, before the newest comes
         state,        ///< of direct-2
-        state_1,
-        state_2,  ///< of transposed-2
-        product,  ///< of a one-pole by difference
-        partial,
+        transposed,   ///< a state of transposed-2
+        product,      ///< of a one-pole by difference
+        partial,      ///< each partial sum
+    };
+    struct Place {
+        Source source = Source::sum;
+        std::size_t index = 0;  ///< of a state of transposed-2, from 1
     };
     struct PartialTerm {
         double coefficient = 1.0;
         std::size_t delay = 0;
-        Source of = Source::input;
+        Place of = {Source::input};
     };
     struct Rail {
-        Source source = Source::sum;
+        Place place = {};
         double lowest = 0.0, highest = 0.0;  ///< narrowed by the error
         std::vector<PartialTerm> terms;      ///< of a partial sum, in the order in which they are added
     };
@@ -65,14 +69,19 @@ private:
     void add_output(double error, bool comes_back);
 
     Word accumulator(int terms, int target) const;
+    std::vector<PartialTerm> forward_terms(Place of) const;
     RailEffect behind() const { return behind_can_forget_ ? RailEffect::exempt : RailEffect::lost; }
-    void add_sum(const char* name, const Word& word, Source source, double worst, double error, RailEffect effect,
+    void add_sum(const std::string& name, const Word& word, Place place, double worst, double error, RailEffect effect,
                  std::vector<PartialTerm> terms);
-    void add(const char* name, const Word& word, Source source, double worst, double error, RailEffect effect,
+    void add(const std::string& name, const Word& word, Place place, double worst, double error, RailEffect effect,
              std::vector<PartialTerm> terms = {});
-    double level_of(Source source) const;
-    double error_of(Source source) const;
-    double value_at(Source source, std::size_t n) const;
+    double level_of(Place place) const;
+    double error_of(Place place) const;
+    double value_at(Place place, std::size_t n) const;
+    /// b_k, a_k; 0 beyond the last one. Of a one-pole b_0 is its k.
+    double forward(std::size_t k) const { return k < element_.forward.size() ? element_.forward[k] : 0.0; }
+    double feedback(std::size_t k) const { return k - 1 < element_.feedback.size() ? element_.feedback[k - 1] : 0.0; }
+    std::size_t order() const;
     bool leaves_rail(const Rail& rail, std::size_t n) const;
 
     const ChainElement element_;

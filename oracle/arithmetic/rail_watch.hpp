@@ -48,8 +48,10 @@ public:
     RailWatch& operator=(RailWatch&&) noexcept;
 
     void reset();
-    /// Values of the next input words. exempt[i] becomes 1 where nothing is claimed of output i, else 0; sizes are
-    /// equal.
+    /// How many outputs the next `inputs` samples give: `inputs` unless the rate changes.
+    std::size_t outputs_for(std::size_t inputs) const;
+    /// Values of the next input words. exempt[i] becomes 1 where nothing is claimed of output i, else 0;
+    /// exempt.size() == outputs_for(in.size()).
     void add(std::span<const double> in, std::span<std::uint8_t> exempt);
 
     /// The first output of which nothing is claimed; from lost_from() on nothing is of any.

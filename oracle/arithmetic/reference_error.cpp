@@ -1,5 +1,6 @@
 #include "oracle/arithmetic/reference_error.hpp"
 
+#include <algorithm>
 #include <cmath>
 
 namespace halflsb {
@@ -23,9 +24,11 @@ bool is_exact(const DescribedChain& chain, const ExactChain& exact) {
 
 double largest_value(const Port& port) { return port.is_float ? 1.0 : -lowest_value(port.word); }
 
-double reference_error(const DescribedChain& chain, const ExactChain& exact) {
+double reference_error(const DescribedChain& chain, const ExactChain& exact, double largest_input) {
     if (is_exact(chain, exact)) return 0.0;
-    return 0x1p-42 * l1_norm(exact.stages) * largest_value(chain.stages.front().in);
+    // A pole near the circle lets the last place of the output come back 1 / (1 - radius) times.
+    const double slow = 0x1p-50 / (1.0 - largest_pole_radius(exact.stages));
+    return std::max(0x1p-42, slow) * l1_norm(exact.stages) * largest_input;
 }
 
 }  // namespace halflsb

@@ -93,8 +93,16 @@ RoundingError operator+(const RoundingError& a, const RoundingError& b) {
 RoundingError rounding_error(std::optional<Rounding> rounding, const RoundedNumbers& numbers) {
     if (!rounding) return unknown_rounding();
     // round_to_whole needs exact fractions: beyond 2^40 parts the limit of ever finer ones, which contains them.
-    if (!(numbers.parts <= 0x1p40)) return of_real_numbers(*rounding);
     RoundingError error;
+    if (!(numbers.parts <= 0x1p40)) {
+        error = of_real_numbers(*rounding);
+        if (numbers.usual_parts > 0.0 && numbers.usual_parts <= 0x1p40) {
+            error.mean_varies = false;
+            error.mean_lowest = error.mean_highest = 0.0;
+            find_moments(*rounding, numbers.usual_parts, error);
+        }
+        return error;
+    }
     if (numbers.parts == 1.0) return error;
     // Within +-8 steps every kind of jump stands, on both sides of zero; a range away from zero is moved by whole,
     // even steps, which changes no error.
@@ -114,7 +122,7 @@ RoundingError rounding_error(std::optional<Rounding> rounding, const RoundedNumb
     constexpr double slack = 1e-6;
     find_ends(*rounding, numbers.parts, std::ceil(low * numbers.parts - slack),
               std::floor(high * numbers.parts + slack), error);
-    find_moments(*rounding, numbers.parts, error);
+    find_moments(*rounding, numbers.usual_parts > 0.0 ? numbers.usual_parts : numbers.parts, error);
     // Where a narrow range leaves out some remainders, the moments are those of an error within its ends.
     error.mean_lowest = std::clamp(error.mean_lowest, error.lowest, error.highest);
     error.mean_highest = std::clamp(error.mean_highest, error.lowest, error.highest);

@@ -34,6 +34,9 @@ RoundingError operator+(const RoundingError& a, const RoundingError& b);
 struct RoundedNumbers {
     double parts = 1.0;
     double lowest = -8.0, highest = 8.0;
+    /// Of the numbers that come up as long as nothing is clipped, at most parts; mean and variance are theirs. 0:
+    /// parts.
+    double usual_parts = 0.0;
 };
 
 /// The ends are attained, each by one of these numbers (where parts is finite). nullopt: any rounding from floor to

@@ -26,7 +26,8 @@ struct RoundingPoint {
     int count = 1;                ///< errors a sample: products that are shortened each by itself
     RoundingError error = {};     ///< of all of them in one sample, as values
     double variance_each = 0.0;   ///< of one of them, the largest
-    bool is_of_input = false;       ///< products of what comes in: of silence they lose nothing
+    bool is_float = false;        ///< errors of float32 operations: step is 2^-24 of the largest number
+    bool is_of_input = false;     ///< products of what comes in: of silence they lose nothing
     bool saves_fraction = false;  ///< what is dropped goes into the next sum: the path has a factor 1 - z^-1
     FilterChain from_input = {};  ///< from the chain's input to the number that is shortened, but for:
     double factor = 1.0;          ///< of a product its smallest coefficient

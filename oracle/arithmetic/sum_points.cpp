@@ -70,7 +70,7 @@ void SumPoints::add_sum(std::vector<Term> terms, const SumTarget& target) {
         return;
     }
     RoundedNumbers numbers = numbers_of(terms, accumulator, target.fraction_bits);
-    if (target.saves_fraction) numbers = {numbers.parts, -unlimited, unlimited};
+    if (target.saves_fraction) numbers = {numbers.parts, -unlimited, unlimited, numbers.usual_parts};
     add_shortening(target, numbers);
 }
 
@@ -109,11 +109,13 @@ void SumPoints::add_products(const std::vector<Term>& terms, const SumTarget& ta
 // of two that a term has; its range is that of its terms at the ends of their words.
 RoundedNumbers SumPoints::numbers_of(const std::vector<Term>& terms, int accumulator, int target_bits) const {
     if (!stage_.coefficients_are_said) return {unlimited, -unlimited, unlimited};
-    int common = 64;
+    int common = 64, usual = 128;
     double low = 0.0, high = 0.0;
     for (const Term& t : terms) {
         const int gained = accumulator - t.fraction_bits;
-        common = std::min(common, gained < 0 ? 0 : trailing_zeros(t.stored) + gained);
+        const int zeros = trailing_zeros(t.stored) + gained;
+        common = std::min(common, std::max(0, zeros));
+        usual = std::min(usual, std::max(0, zeros + t.spare_bits));
         const double stored = static_cast<double>(t.stored);
         const double scale = std::ldexp(t.is_subtracted ? -stored : stored, target_bits - t.fraction_bits);
         const double lowest = -power_of_two(t.word.bits - 1), highest = power_of_two(t.word.bits - 1) - 1.0;
@@ -122,7 +124,8 @@ RoundedNumbers SumPoints::numbers_of(const std::vector<Term>& terms, int accumul
         // A product that was shortened before can lie a step of the accumulator beyond its range.
         if (gained < 0) low -= power_of_two(target_bits - accumulator), high += power_of_two(target_bits - accumulator);
     }
-    return {power_of_two(std::max(0, accumulator - target_bits - common)), low, high};
+    const int dropped = accumulator - target_bits;
+    return {power_of_two(std::max(0, dropped - common)), low, high, power_of_two(std::max(0, dropped - usual))};
 }
 
 }  // namespace halflsb

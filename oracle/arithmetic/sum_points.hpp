@@ -11,6 +11,7 @@ struct Term {
     std::int64_t stored = 1;     ///< 1 where nothing says how finely it is stored
     int fraction_bits = 0;       ///< of the product
     Word word = {};              ///< that is multiplied
+    int spare_bits = 0;          ///< of its fraction that are always 0
     bool is_feedback = false;    ///< of what the section returned before
     bool is_subtracted = false;  ///< after it was shortened, if it was
 };
@@ -23,7 +24,7 @@ struct SumTarget {
     int fraction_bits = 0;
     Rounding rounding = Rounding::floor;
     bool saves_fraction = false;
-    bool multiplies_input = true;  ///< its forward products do; those of direct-2's output multiply the state
+    bool multiplies_input = true;          ///< its forward products do; those of direct-2's output multiply the state
     FilterChain from_input = {};           ///< to the sum
     FilterChain from_input_of_terms = {};  ///< to what its forward products multiply
 };

@@ -34,10 +34,20 @@ inline BiquadSection random_section(Random& random, double largest_radius) {
     return s;
 }
 
-inline FilterStage random_design(Random& random) {
+inline std::vector<double> product_of(const std::vector<double>& a, const std::vector<double>& b) {
+    std::vector<double> product(a.size() + b.size() - 1, 0.0);
+    for (std::size_t i = 0; i < a.size(); ++i) {
+        for (std::size_t j = 0; j < b.size(); ++j) product[i + j] += a[i] * b[j];
+    }
+    return product;
+}
+
+/// Without `all`: no recursion and no median.
+inline FilterStage random_design(Random& random, bool all) {
     FilterStage stage;
     StageArithmetic& said = stage.arithmetic;
-    const std::int64_t kind = random.whole(0, 9);
+    std::int64_t kind = random.whole(0, 11);
+    if (!all && (kind == 7 || kind == 8)) kind = 9;
     stage.coefficient_fraction_bits = static_cast<int>(random.whole(4, 26));
     if (kind <= 1) {
         Fir fir;
@@ -64,6 +74,20 @@ inline FilterStage random_design(Random& random) {
     } else if (kind == 6) {
         stage.design = Comb{static_cast<int>(random.whole(1, 9)), random.ratio(), random.ratio(), 0.9 * random.ratio()};
         stage.kind = "comb";
+    } else if (kind == 7) {
+        Recursion recursion{{random.ratio()}, {1.0}};
+        for (std::int64_t j = random.whole(1, 2); j > 0; --j) {
+            const BiquadSection s = random_section(random, 0.85);
+            recursion.b = product_of(recursion.b, {s.b0, s.b1, s.b2});
+            recursion.a = product_of(recursion.a, {1.0, s.a1, s.a2});
+        }
+        stage.design = recursion;
+        stage.kind = "iir";
+        said.structure = one_of(random, {Structure::direct_1, Structure::direct_2, Structure::transposed_2});
+    } else if (kind == 8) {
+        stage.design = Median{static_cast<int>(random.whole(1, 9))};
+        stage.kind = "median";
+        stage.coefficient_fraction_bits.reset();
     } else {
         BiquadCascade cascade;
         const double radius = chance(random, 20) ? 0.998 : 0.95;
@@ -95,6 +119,7 @@ inline void random_arithmetic(Random& random, FilterStage& stage) {
 inline bool is_stable_as_stored(const FilterStage& stage) {
     const FilterStage stored = with_rounded_coefficients(stage);
     if (const auto* comb = std::get_if<Comb>(&stored.design)) return std::fabs(comb->feedback) < 1.0;
+    if (std::holds_alternative<Recursion>(stored.design)) return largest_pole_radius({stored}) < 0.98;
     const auto* cascade = std::get_if<BiquadCascade>(&stored.design);
     if (cascade == nullptr) return true;
     for (const BiquadSection& s : cascade->sections)
@@ -124,7 +149,7 @@ inline RandomChain random_chain(Random& random, bool is_narrow = false) {
         const std::int64_t count = chance(random, 30) ? 2 : 1;
         bool is_stable = true;
         for (std::int64_t i = 0; i < count; ++i) {
-            FilterStage stage = random_design(random);
+            FilterStage stage = random_design(random, is_narrow);
             random_arithmetic(random, stage);
             if (is_narrow) random_narrow_words(random, stage);
             if (i + 1 < count) stage.arithmetic.stage_format = made.out;

@@ -4,6 +4,7 @@
 #include <vector>
 
 #include "oracle/arithmetic/exact_chain.hpp"
+#include "oracle/arithmetic/port_values.hpp"
 #include "oracle/arithmetic/twin.hpp"
 #include "tests/oracle/support.hpp"
 
@@ -33,18 +34,19 @@ inline std::vector<Code> hard_words(Random& random, const DescribedChain& chain,
     return words;
 }
 
-/// The response of the twin as values of the chain's input; `words` have the mid-code taken away.
-inline std::vector<double> twin_values(const DescribedChain& chain, const std::vector<Code>& words) {
-    const Port& in = chain.stages.front().in;
-    const Port& out = chain.stages.back().out;
-    std::vector<Code> codes(words), returned(words.size());
-    for (Code& code : codes) code = static_cast<Code>(code + in.zero_code);
+/// The response of the twin as values of the chain's input, to codes as they travel.
+inline std::vector<double> twin_values_of_codes(const DescribedChain& chain, const std::vector<Code>& codes) {
+    std::vector<Code> returned(codes.size());
+    std::vector<double> values(codes.size());
     make_twin(chain)->process(codes, returned);
-    std::vector<double> values;
-    for (const Code code : returned) {
-        values.push_back(std::ldexp(static_cast<double>(code - out.zero_code), -out.word.fraction_bits));
-    }
+    values_at(chain.stages.back().out, returned, values);
     return values;
+}
+
+/// `words` have the mid-code taken away.
+inline std::vector<double> twin_values(const DescribedChain& chain, std::vector<Code> words) {
+    for (Code& word : words) word = static_cast<Code>(word + chain.stages.front().in.zero_code);
+    return twin_values_of_codes(chain, words);
 }
 
 }  // namespace halflsb::testing

@@ -1,0 +1,256 @@
+#include "oracle/arithmetic/float_points.hpp"
+
+#include <cmath>
+#include <limits>
+
+#include "oracle/arithmetic/chain_elements.hpp"
+
+namespace halflsb {
+
+namespace {
+
+using Place = RoundingPoint::Place;
+
+constexpr double unit = 0x1p-24, smallest = 0x1p-149;
+// Second-order terms, and the errors that are in the numbers themselves: below this of the first-order bound while
+// n u < 2^-11 for sums of n terms.
+constexpr double beyond_first_order = 1.0 + 0x1p-10;
+constexpr double unlimited = std::numeric_limits<double>::infinity();
+
+/// The error of a sum: each term of `size` is rounded once as a product, unless it is fused, and once in every addition
+/// from its own on.
+class SumError {
+public:
+    explicit SumError(bool fused) : fused_(fused) {}
+
+    void add_product(double size) { add(size, !fused_ || partial_ == 0.0); }
+    void add_whole(double size) { add(size, false); }
+    double value() const { return beyond_first_order * unit * error_ + static_cast<double>(2 * count_) * smallest; }
+    int count() const { return count_; }
+
+private:
+    void add(double size, bool is_rounded) {
+        if (size == 0.0) return;
+        if (is_rounded) error_ += size;
+        if (count_++ > 0) error_ += partial_ + size;
+        partial_ += size;
+    }
+
+    bool fused_;
+    double partial_ = 0.0, error_ = 0.0;
+    int count_ = 0;
+};
+
+class ElementPoints {
+public:
+    ElementPoints(const ChainElement& element, const ExactChain& exact, const FloatUse& use)
+        : element_(element), stage_(*element.stage), use_(use) {
+        const auto level = [&](std::size_t stages, std::size_t sections) {
+            FilterChain path(exact.stages.begin(), exact.stages.begin() + static_cast<std::ptrdiff_t>(stages));
+            if (sections > 0) {
+                auto cascade = std::get<BiquadCascade>(exact.stages[stages].design);
+                cascade.sections.resize(sections);
+                FilterStage part;
+                part.design = cascade;
+                path.push_back(part);
+            }
+            return use.largest_input * l1_norm(path) * beyond_first_order;
+        };
+        const bool is_section = std::holds_alternative<BiquadCascade>(element.exact.front().design);
+        in_ = is_section ? level(element.node.stage, element.node.section)
+                         : level(exact.first_of[element.stage_index], 0);
+        out_ = is_section ? level(element.node.stage, element.node.section + 1) : level(element.node.stage + 1, 0);
+        output_path_.assign(exact.stages.begin(), exact.stages.begin() + static_cast<std::ptrdiff_t>(
+                                                                             exact.first_of[element.stage_index + 1]));
+        state_ = element.has_sums() ? in_ * l1_norm(element.loop()) * beyond_first_order : 0.0;
+    }
+
+    std::vector<RoundingPoint> find() {
+        const FilterDesign& design = element_.exact.front().design;
+        add_input();
+        if (const auto* fir = std::get_if<Fir>(&design)) of_taps(fir->taps);
+        if (const auto* decimator = std::get_if<FirDecimator>(&design)) of_taps(decimator->taps);
+        if (const auto* interpolator = std::get_if<FirInterpolator>(&design)) of_taps(interpolator->taps);
+        if (const auto* average = std::get_if<MovingAverage>(&design)) of_average(average->points);
+        if (const auto* median = std::get_if<Median>(&design)) {
+            SumError mean(false);
+            if (median->points % 2 == 0) mean.add_whole(in_), mean.add_whole(in_);
+            add("mean", Place::behind, mean);
+        }
+        if (element_.comb() != nullptr) of_comb(*element_.comb());
+        if (element_.has_sums()) of_sums();
+        add_output();
+        return std::move(points_);
+    }
+
+private:
+    bool is_first_of_stage() const { return element_.node.section == 0; }
+
+    /// Input words that a float32 does not hold exactly.
+    void add_input() {
+        if (stage_.in.is_float || !is_first_of_stage() || stage_.in.word.bits <= 25) return;
+        push("input", Place::entry, unit * in_, 1);
+    }
+
+    void of_taps(const std::vector<double>& taps) {
+        SumError sum(stage_.fused);
+        const bool turned = stage_.summation == Summation::oldest_first;
+        for (std::size_t k = 0; k < taps.size(); ++k) {
+            sum.add_product(in_ * std::fabs(taps[turned ? taps.size() - 1 - k : k]));
+        }
+        add("sum", Place::behind, sum);
+    }
+
+    void of_average(int points) {
+        // Whole numbers of steps of the input word: exact as long as the sum, and what the running one holds
+        // in between, is below 2^24 of them.
+        const bool is_exact =
+            !stage_.in.is_float && std::ldexp(static_cast<double>(points) + 1.0, stage_.in.word.bits - 1) <= 0x1p24;
+        double error = 0.0;
+        if (!is_exact && stage_.structure == Structure::running_sum) {
+            // e[n] <= (1 + u)^2 e[n-1] + ((1 + u)^2 - 1) W, W a bound of the window and one sample.
+            const double window = (points + 1.0) * in_;
+            error = window * std::expm1(2.0 * unit * static_cast<double>(use_.samples)) / points;
+        } else if (!is_exact) {
+            SumError sum(true);
+            for (int k = 0; k < points; ++k) sum.add_whole(in_);
+            error = sum.value() / points;
+        }
+        if (error > 0.0) push("sum", Place::behind, error, points);
+        const bool is_shift = (points & (points - 1)) == 0;
+        if (!is_shift) push("division", Place::behind, unit * beyond_first_order * out_ + smallest, 1);
+    }
+
+    void of_comb(const Comb& comb) {
+        SumError sum(stage_.fused);
+        sum.add_product(in_ * std::fabs(comb.direct));
+        sum.add_product(in_ * std::fabs(comb.forward));
+        sum.add_product(out_ * std::fabs(comb.feedback));
+        add("sum", Place::loop, sum);
+    }
+
+    void of_sums() {
+        const auto b = [&](std::size_t k) {
+            return k < element_.forward.size() ? std::fabs(element_.forward[k]) : 0.0;
+        };
+        const auto a = [&](std::size_t k) {
+            return k <= element_.feedback.size() ? std::fabs(element_.feedback[k - 1]) : 0.0;
+        };
+        const std::size_t order = std::max(element_.forward.size() - 1, element_.feedback.size());
+        SumError sum(stage_.fused);
+        switch (stage_.structure) {
+            case Structure::direct_2: {
+                sum.add_whole(in_);
+                for (std::size_t k = 1; k <= order; ++k) sum.add_product(a(k) * state_);
+                add("state", Place::entry, sum);
+                SumError out(stage_.fused);
+                for (std::size_t k = 0; k <= order; ++k) out.add_product(b(k) * state_);
+                add("output", Place::behind, out);
+                break;
+            }
+            case Structure::transposed_2: {
+                double all = sum_of_transposed(order, b, a);
+                push("sums", Place::loop, all, static_cast<int>(3 * order + 1));
+                break;
+            }
+            case Structure::difference: {
+                // d = x - s, p = C d, s + p.
+                const double d = in_ + out_, p = b(0) * d;
+                const double rounded = b(0) * d + (stage_.fused ? 0.0 : p) + out_ + p;
+                push("sum", Place::loop, unit * beyond_first_order * rounded + 3.0 * smallest, 3);
+                break;
+            }
+            case Structure::leak: {
+                const double x = b(0) * in_, s = b(0) * out_;
+                const double rounded = (stage_.fused ? 0.0 : x + s) + (out_ + x) + (out_ + x + s);
+                push("sum", Place::loop, unit * beyond_first_order * rounded + 4.0 * smallest, 4);
+                break;
+            }
+            default:
+                for (std::size_t k = 0; k <= order; ++k) sum.add_product(b(k) * in_);
+                for (std::size_t k = 1; k <= order; ++k) sum.add_product(a(k) * out_);
+                add("sum", Place::loop, sum);
+        }
+    }
+
+    /// y = s1 + b0 x; s_k = (s_k+1 + b_k x) + C_k y: all errors reach the sum of y.
+    template <class Forward, class Feedback>
+    double sum_of_transposed(std::size_t order, Forward b, Feedback a) const {
+        double next = 0.0, all = 0.0;
+        for (std::size_t k = order; k > 0; --k) {
+            SumError state(stage_.fused);
+            if (k < order) state.add_whole(next);
+            state.add_product(b(k) * in_);
+            state.add_product(a(k) * out_);
+            // A first product that is fused with a state is rounded with the sum alone; counted as if by itself.
+            all += state.value() + (stage_.fused ? unit * b(k) * in_ : 0.0);
+            next += b(k) * in_ + a(k) * out_;
+        }
+        SumError output(stage_.fused);
+        output.add_whole(next);
+        output.add_product(b(0) * in_);
+        return all + output.value() + (stage_.fused ? unit * b(0) * in_ : 0.0);
+    }
+
+    /// Back to whole words: of real numbers.
+    void add_output() {
+        if (stage_.out.is_float || !element_.is_last_of_stage) return;
+        const double step = step_of(stage_.out.word);
+        RoundingPoint& point = push("output", Place::behind, 0.0, 1);
+        point.step = step;
+        point.error = rounding_error(stage_.rounding, {unlimited, -unlimited, unlimited}).times(step);
+        point.variance_each = point.error.variance;
+    }
+
+    void add(const char* what, Place place, const SumError& sum) {
+        if (sum.value() > 0.0) push(what, place, sum.value(), sum.count());
+    }
+
+    double loop_gain() const {
+        if (const Comb* comb = element_.comb()) return 1.0 / (1.0 - std::fabs(comb->feedback));
+        return l1_norm(element_.loop());
+    }
+
+    RoundingPoint& push(const char* what, Place place, double error, int count) {
+        // What a loop makes of its own errors must stay small against what it computes, else nothing is known of the
+        // numbers that are rounded.
+        const double gain = place == Place::behind || !element_.is_recursive() ? 1.0 : loop_gain();
+        if (error * gain > 0x1p-11 * out_ && place != Place::behind) error = unlimited;
+        RoundingPoint point;
+        point.name = element_.name + ", " + what;
+        point.stage = element_.stage_index;
+        point.node = element_.node;
+        point.node.in_feedback = place == Place::loop;
+        point.place = place;
+        point.step = unit * out_;
+        point.is_float = what != std::string_view("output");
+        point.parts = unlimited;
+        point.count = count;
+        point.error = {-error, error, -error, error, true, 0.0};
+        // The model knows no distribution of these: no noise stands above them.
+        point.factor = point.is_float ? 0.0 : 1.0;
+        if (!point.is_float) point.from_input = output_path_;
+        points_.push_back(std::move(point));
+        return points_.back();
+    }
+
+    const ChainElement& element_;
+    const DescribedStage& stage_;
+    const FloatUse& use_;
+    double in_ = 0.0, out_ = 0.0, state_ = 0.0;
+    FilterChain output_path_;
+    std::vector<RoundingPoint> points_;
+};
+
+}  // namespace
+
+std::vector<RoundingPoint> float_points(const DescribedChain& chain, const ExactChain& exact, const FloatUse& use) {
+    std::vector<RoundingPoint> all;
+    for (const ChainElement& element : chain_elements(chain, exact)) {
+        if (element.is_integer()) continue;
+        for (RoundingPoint& point : ElementPoints(element, exact, use).find()) all.push_back(std::move(point));
+    }
+    return all;
+}
+
+}  // namespace halflsb
