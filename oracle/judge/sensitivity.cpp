@@ -112,7 +112,7 @@ Sensitivity sensitivity(const Plan& plan, const std::vector<std::size_t>& cases,
         return result;
     }
     const std::vector<ArithmeticChange> changes = changes_of(plan);
-    for (const ArithmeticChange& change : changes) result.changes.push_back({change.name, {}, {}, {}, 0, 0.0});
+    for (const ArithmeticChange& change : changes) result.changes.push_back({change.name, ChangeSeen::Answer::same, {}, {}, 0, 0.0});
     const auto channels = static_cast<std::size_t>(plan.signal.channels);
     for (const std::size_t index : cases) {
         if (!go_on()) break;

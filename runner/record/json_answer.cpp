@@ -2,6 +2,7 @@
 
 #include "runner/record/json_parts.hpp"
 #include "runner/record/json_text.hpp"
+#include "runner/record/prediction_json.hpp"
 #include "runner/record/run_document.hpp"
 #include "runner/world/printable.hpp"
 
@@ -19,24 +20,6 @@ Json listed_case_json(const ListedCase& listed) {
             {"start_samples", listed.start_samples},
             {"signal_s", number_json(listed.signal_s)},
             {"wire_s", number_json(listed.wire_s)}};
-}
-
-Json filter_json(const PredictedFilter& filter) {
-    Json response = Json::array();
-    for (const PredictedFilter::Point& point : filter.response) {
-        response.push_back({{"frequency_hz", number_json(point.frequency_hz)},
-                            {"cycles_per_sample", number_json(point.cycles_per_sample)},
-                            {"design_db", number_json(point.design_db)},
-                            {"declared_db", number_json(point.declared_db)},
-                            {"phase_degrees", number_json(point.phase_degrees)}});
-    }
-    return {{"channels", filter.channels},
-            {"stages", filter.stages},
-            {"largest_pole_radius", number_json(filter.largest_pole_radius)},
-            {"l1_norm", number_json(filter.l1_norm)},
-            {"dc_gain_db", number_json(filter.dc_gain_db)},
-            {"corner_hz", number_json(filter.corner_hz)},
-            {"response", std::move(response)}};
 }
 
 }  // namespace
@@ -111,21 +94,7 @@ void JsonAnswer::set_ports(const std::vector<ListedPort>& ports) {
 }
 
 void JsonAnswer::set_prediction(const Prediction& prediction) {
-    Json filters = Json::array(), cases = Json::array();
-    for (const PredictedFilter& filter : prediction.filters) filters.push_back(filter_json(filter));
-    for (const PredictedCase& predicted : prediction.cases) {
-        cases.push_back({{"name", predicted.name},
-                         {"samples", predicted.samples},
-                         {"latency_told", predicted.latency_told},
-                         {"wire_s", number_json(predicted.wire_s)}});
-    }
-    prediction_ = json_value_text({{"title", text_json(prediction.title)},
-                                   {"plan_file", prediction.plan_file},
-                                   {"signal", signal_json(prediction.signal)},
-                                   {"filters", std::move(filters)},
-                                   {"wire_s", number_json(prediction.wire_s)},
-                                   {"cases", std::move(cases)}},
-                                  1);
+    prediction_ = json_value_text(prediction_json(prediction), 1);
 }
 
 std::string JsonAnswer::text(int exit_status) const {

@@ -8,12 +8,13 @@
 #include <utility>
 #include <vector>
 
+#include "runner/world/prediction.hpp"
 #include "runner/world/result.hpp"
 #include "stimuli/outcome.hpp"
 
 namespace halflsb {
 
-inline constexpr int json_answer_version = 1;
+inline constexpr int json_answer_version = 2;
 
 /// A case that would run.
 struct ListedCase {
@@ -53,34 +54,6 @@ struct AcceptedBaseline {
 
 struct ListedPort {
     std::string device, stable_name, description;
-};
-
-/// A filter on paper, as a channel has it.
-struct PredictedFilter {
-    std::vector<int> channels;
-    std::size_t stages = 0;
-    double largest_pole_radius = 0.0, l1_norm = 0.0, dc_gain_db = 0.0;
-    std::optional<double> corner_hz;  ///< where the gain is first 3 dB below that at 0 Hz
-    struct Point {
-        double frequency_hz = 0.0, cycles_per_sample = 0.0, design_db = 0.0, declared_db = 0.0;
-        std::optional<double> phase_degrees;  ///< none where nothing comes through
-    };
-    std::vector<Point> response;
-};
-
-struct PredictedCase {
-    std::string name;
-    std::int64_t samples = 0;
-    bool latency_told = false;
-    std::optional<double> wire_s;
-};
-
-struct Prediction {
-    std::string title, plan_file;
-    Signal signal;
-    std::vector<PredictedFilter> filters;  ///< none for an unknown filter
-    std::vector<PredictedCase> cases;
-    std::optional<double> wire_s;
 };
 
 class JsonAnswer {

@@ -31,7 +31,7 @@ TEST_CASE("json answer: of nothing but an error it is still a document", "[recor
     answer.set_problems({"a.toml:1:2: wrong\n", "b"});
     CHECK(Json::parse(answer.text(64)) ==
           Json{{"format", "halflsb"},
-               {"format_version", 1},
+               {"format_version", 2},
                {"tool_version", "0.1.0"},
                {"exit_status", 64},
                {"error",

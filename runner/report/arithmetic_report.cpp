@@ -1,0 +1,194 @@
+#include "runner/report/arithmetic_report.hpp"
+
+#include <algorithm>
+#include <cmath>
+#include <vector>
+
+#include "runner/report/people.hpp"
+#include "runner/world/printable.hpp"
+
+namespace halflsb {
+
+namespace {
+
+constexpr std::size_t most_case_lines = 12;
+constexpr std::size_t field_columns = 9;
+
+/// What the reference's own double precision adds is no figure for people.
+std::string figure_text(double value) { return std::fabs(value) < 1e-6 ? "0" : rounded_text(value); }
+
+std::string range_text(double lower, double upper) { return figure_text(lower) + " .. " + figure_text(upper); }
+
+std::string effect_text(RailEffect effect) {
+    switch (effect) {
+        case RailEffect::clip:
+            return "reaches its rail and clips there as the reference does";
+        case RailEffect::exempt:
+            return "reaches its rail; derived limits leave out the samples that this touches";
+        case RailEffect::lost:
+            break;
+    }
+    return "reaches its rail; no derived limit holds from there on";
+}
+
+/// A heading that lines up with "signal" and "filter".
+std::string field(const TextStyle& style, std::string_view key, const std::string& value) {
+    std::string lines = wrapped(style, value, field_columns);
+    lines.replace(0, std::min(field_columns, lines.size()), padded(key, field_columns));
+    return lines;
+}
+
+std::string sums_text(const PredictedError& error, const std::string& unit) {
+    return "largest " + rounded_text(error.largest()) + ", rms " + rounded_text(error.rms) + ", bias " +
+           range_text(error.bias_lower, error.bias_upper) + unit;
+}
+
+std::string cases_text(const std::vector<PredictedCaseError>& cases, const TextStyle& style) {
+    if (cases.empty()) return "";
+    Table table{{{"case", false, 0},
+                 {"samples", true, 1},
+                 {"largest", true, 0},
+                 {"rms", true, 0},
+                 {"bias", true, 0},
+                 {"rms and bias", false, 2}},
+                {},
+                2};
+    for (std::size_t i = 0; i < std::min(cases.size(), most_case_lines); ++i) {
+        const PredictedCaseError& one = cases[i];
+        table.rows.push_back({printable(one.name), std::to_string(one.samples), rounded_text(one.error.largest()),
+                              rounded_text(one.error.rms), range_text(one.error.bias_lower, one.error.bias_upper),
+                              one.error.why});
+    }
+    std::string text = laid_out(style, table);
+    if (cases.size() > most_case_lines)
+        text += "  and " + std::to_string(cases.size() - most_case_lines) + " more, with --json\n";
+    return text;
+}
+
+}  // namespace
+
+std::string unit_text(const Signal& signal) { return signal.output.has_lsb() ? " LSB" : ""; }
+
+std::string assumed_text(const PredictedArithmetic& told, const Signal& signal, const TextStyle& style) {
+    std::string text;
+    for (const PredictedAssumption& stage : told.assumed) {
+        std::string line = "stage " + std::to_string(stage.stage) + " says nothing else, taken for it: ";
+        for (std::size_t i = 0; i < stage.taken.size(); ++i) line += (i == 0 ? "" : ", ") + stage.taken[i];
+        text += field(style, text.empty() ? "assumed" : "", line);
+    }
+    if (told.largest_if_rounding_said) {
+        const auto [now, then] = compared_text(told.error.largest(), *told.largest_if_rounding_said);
+        text += wrapped(style,
+                        "rounding = \"half-up\" in the plan would make the largest error " + then + unit_text(signal) +
+                            " in place of " + now,
+                        field_columns);
+    }
+    return text;
+}
+
+std::string bound_text(const PredictedArithmetic& told, const Signal& signal, const TextStyle& style) {
+    const std::string unit = unit_text(signal);
+    std::string text =
+        "error    " + std::string("response less declared reference, at most, while no rail is reached") + "\n";
+    if (!told.terms.empty()) {
+        Table table{{{"point", false, 0},
+                     {"steps of" + (unit.empty() ? std::string(" value") : unit), true, 2},
+                     {"error in steps", true, 0},
+                     {"sum |h|", true, 0},
+                     {"sum h^2", true, 1},
+                     {"sum h", true, 1},
+                     {"at the output" + (unit.empty() ? std::string() : "," + unit), true, 0}},
+                    {},
+                    2};
+        std::vector<std::string> formulas;
+        for (const PredictedTerm& term : told.terms) {
+            const std::string errors = term.count > 1 ? std::to_string(term.count) + " errors, " : "";
+            table.rows.push_back({term.name, rounded_text(term.step),
+                                  term.lowest ? errors + range_text(*term.lowest, *term.highest) : "-",
+                                  rounded_text(term.l1), rounded_text(term.noise_gain), rounded_text(term.dc_gain),
+                                  range_text(term.lower, term.upper)});
+            if (std::find(formulas.begin(), formulas.end(), term.formula) == formulas.end())
+                formulas.push_back(term.formula);
+        }
+        text += laid_out(style, table);
+        for (const std::string& formula : formulas) text += wrapped(style, "at the output: " + formula, 2);
+    } else {
+        text += "  no number is shortened anywhere\n";
+    }
+    if (told.reference_error > 0.0)
+        text += "  the double precision of the reference itself: " + rounded_text(told.reference_error) + unit + "\n";
+    text += wrapped(style, sums_text(told.error, unit) + " (" + told.error.why + ")", 2);
+    return text + cases_text(told.cases, style);
+}
+
+std::string headroom_text(const PredictedArithmetic& told, const TextStyle& style) {
+    if (told.nodes.empty()) return "";
+    Table table{{{"node", false, 0},
+                 {"bits", true, 0},
+                 {"fraction", true, 2},
+                 {"worst steps", true, 0},
+                 {"error", true, 3},
+                 {"of the rail", true, 0},
+                 {"bits needed", true, 0},
+                 {"integer", true, 1},
+                 {"stimulus", true, 4}},
+                {},
+                2};
+    bool has_stimuli = false;
+    for (const PredictedNode& node : told.nodes) {
+        has_stimuli = has_stimuli || !node.signs.empty();
+        table.rows.push_back({node.name, node.bits ? std::to_string(*node.bits) : "any",
+                              std::to_string(node.fraction_bits), rounded_text(node.worst), rounded_text(node.error),
+                              node.bits ? rounded_text(node.rail_ratio) : "-",
+                              node.bits_needed ? std::to_string(*node.bits_needed) : "none",
+                              node.integer_bits_needed ? std::to_string(*node.integer_bits_needed) : "-",
+                              node.signs.empty() ? "-" : std::to_string(node.signs.size())});
+    }
+    std::string text = "headroom the largest level of each node, for any input of full scale, in steps of its word\n";
+    text += laid_out(style, table);
+    for (const PredictedNode& node : told.nodes) {
+        if (node.is_reachable) text += wrapped(style, node.name + " " + effect_text(node.effect), 2);
+    }
+    if (has_stimuli) {
+        text += wrapped(style,
+                        "what drives a node hardest: full scale times the signs of its impulse response, reversed, so "
+                        "many samples; the signs are in the answer of --json",
+                        2);
+    }
+    for (const PredictedCoefficients& stage : told.coefficients) {
+        text += "  coefficients of stage " + std::to_string(stage.stage) + ": " + std::to_string(stage.bits_needed) +
+                " bits needed at " + std::to_string(stage.fraction_bits) + " fraction bits" +
+                (stage.bits ? ", " + std::to_string(*stage.bits) + " said" : "") + "\n";
+    }
+    return text;
+}
+
+std::string silence_text(const PredictedArithmetic& told, const Signal& signal, const TextStyle& style) {
+    if (!told.silence) return "";
+    const PredictedSilence& silence = *told.silence;
+    std::string text;
+    if (silence.lowest_code == 0 && silence.highest_code == 0) {
+        text = field(style, "silence", "nothing remains when the input has ended: proven");
+    } else {
+        text = field(style, "silence",
+                     "what remains when the input has ended is proven to lie in " +
+                         range_text(silence.lower, silence.upper) + unit_text(signal));
+    }
+    if (silence.searched) {
+        text += wrapped(style,
+                        "every state was tried: codes " + std::to_string(silence.searched->lowest) + " .. " +
+                            std::to_string(silence.searched->highest) + ", the widest cycle of " +
+                            counted(silence.searched->period_samples, "sample", "samples"),
+                        field_columns);
+    }
+    for (const PredictedSilence::Estimate& estimate : silence.estimates) {
+        text += wrapped(style,
+                        "estimate, no bound (Jackson 1969), " + estimate.name + ": an oscillation of " +
+                            std::to_string(estimate.oscillation) + ", a constant of " +
+                            std::to_string(estimate.constant) + " steps of its state",
+                        field_columns);
+    }
+    return text;
+}
+
+}  // namespace halflsb
