@@ -14,10 +14,19 @@ namespace {
 constexpr std::size_t most_case_lines = 12;
 constexpr std::size_t field_columns = 9;
 
-/// What the reference's own double precision adds is no figure for people.
-std::string figure_text(double value) { return std::fabs(value) < 1e-6 ? "0" : rounded_text(value); }
+std::string range_text(double lower, double upper) { return rounded_text(lower) + " .. " + rounded_text(upper); }
 
-std::string range_text(double lower, double upper) { return figure_text(lower) + " .. " + figure_text(upper); }
+/// Figures at the output. A millionth of an LSB is what the reference's own double precision adds: none for people.
+class Figures {
+public:
+    explicit Figures(const Signal& signal) : negligible_(signal.output.has_lsb() ? 1e-6 : 0.0) {}
+    std::string one(double value) const { return std::fabs(value) < negligible_ ? "0" : rounded_text(value); }
+    std::string range(double lower, double upper) const { return one(lower) + " .. " + one(upper); }
+    bool is_told(double value) const { return value > 0.0 && value >= negligible_; }
+
+private:
+    double negligible_;
+};
 
 std::string effect_text(RailEffect effect) {
     switch (effect) {
@@ -38,12 +47,12 @@ std::string field(const TextStyle& style, std::string_view key, const std::strin
     return lines;
 }
 
-std::string sums_text(const PredictedError& error, const std::string& unit) {
-    return "largest " + rounded_text(error.largest()) + ", rms " + rounded_text(error.rms) + ", bias " +
-           range_text(error.bias_lower, error.bias_upper) + unit;
+std::string sums_text(const PredictedError& error, const Figures& figures, const std::string& unit) {
+    return "largest " + figures.one(error.largest()) + ", rms " + figures.one(error.rms) + ", bias " +
+           figures.range(error.bias_lower, error.bias_upper) + unit;
 }
 
-std::string cases_text(const std::vector<PredictedCaseError>& cases, const TextStyle& style) {
+std::string cases_text(const std::vector<PredictedCaseError>& cases, const Figures& figures, const TextStyle& style) {
     if (cases.empty()) return "";
     Table table{{{"case", false, 0},
                  {"samples", true, 1},
@@ -55,8 +64,8 @@ std::string cases_text(const std::vector<PredictedCaseError>& cases, const TextS
                 2};
     for (std::size_t i = 0; i < std::min(cases.size(), most_case_lines); ++i) {
         const PredictedCaseError& one = cases[i];
-        table.rows.push_back({printable(one.name), std::to_string(one.samples), rounded_text(one.error.largest()),
-                              rounded_text(one.error.rms), range_text(one.error.bias_lower, one.error.bias_upper),
+        table.rows.push_back({printable(one.name), std::to_string(one.samples), figures.one(one.error.largest()),
+                              figures.one(one.error.rms), figures.range(one.error.bias_lower, one.error.bias_upper),
                               one.error.why});
     }
     std::string text = laid_out(style, table);
@@ -72,7 +81,7 @@ std::string unit_text(const Signal& signal) { return signal.output.has_lsb() ? "
 std::string assumed_text(const PredictedArithmetic& told, const Signal& signal, const TextStyle& style) {
     std::string text;
     for (const PredictedAssumption& stage : told.assumed) {
-        std::string line = "stage " + std::to_string(stage.stage) + " says nothing else, taken for it: ";
+        std::string line = "stage " + std::to_string(stage.stage) + ", where the plan says nothing: ";
         for (std::size_t i = 0; i < stage.taken.size(); ++i) line += (i == 0 ? "" : ", ") + stage.taken[i];
         text += field(style, text.empty() ? "assumed" : "", line);
     }
@@ -88,11 +97,12 @@ std::string assumed_text(const PredictedArithmetic& told, const Signal& signal, 
 
 std::string bound_text(const PredictedArithmetic& told, const Signal& signal, const TextStyle& style) {
     const std::string unit = unit_text(signal);
+    const Figures figures(signal);
     std::string text =
         "error    " + std::string("response less declared reference, at most, while no rail is reached") + "\n";
     if (!told.terms.empty()) {
         Table table{{{"point", false, 0},
-                     {"steps of" + (unit.empty() ? std::string(" value") : unit), true, 2},
+                     {"step" + (unit.empty() ? std::string() : "," + unit), true, 2},
                      {"error in steps", true, 0},
                      {"sum |h|", true, 0},
                      {"sum h^2", true, 1},
@@ -106,7 +116,7 @@ std::string bound_text(const PredictedArithmetic& told, const Signal& signal, co
             table.rows.push_back({term.name, rounded_text(term.step),
                                   term.lowest ? errors + range_text(*term.lowest, *term.highest) : "-",
                                   rounded_text(term.l1), rounded_text(term.noise_gain), rounded_text(term.dc_gain),
-                                  range_text(term.lower, term.upper)});
+                                  figures.range(term.lower, term.upper)});
             if (std::find(formulas.begin(), formulas.end(), term.formula) == formulas.end())
                 formulas.push_back(term.formula);
         }
@@ -115,10 +125,10 @@ std::string bound_text(const PredictedArithmetic& told, const Signal& signal, co
     } else {
         text += "  no number is shortened anywhere\n";
     }
-    if (told.reference_error > 0.0)
+    if (figures.is_told(told.reference_error))
         text += "  the double precision of the reference itself: " + rounded_text(told.reference_error) + unit + "\n";
-    text += wrapped(style, sums_text(told.error, unit) + " (" + told.error.why + ")", 2);
-    return text + cases_text(told.cases, style);
+    text += wrapped(style, sums_text(told.error, figures, unit) + " (" + told.error.why + ")", 2);
+    return text + cases_text(told.cases, figures, style);
 }
 
 std::string headroom_text(const PredictedArithmetic& told, const TextStyle& style) {
@@ -172,7 +182,7 @@ std::string silence_text(const PredictedArithmetic& told, const Signal& signal, 
     } else {
         text = field(style, "silence",
                      "what remains when the input has ended is proven to lie in " +
-                         range_text(silence.lower, silence.upper) + unit_text(signal));
+                         Figures(signal).range(silence.lower, silence.upper) + unit_text(signal));
     }
     if (silence.searched) {
         text += wrapped(style,

@@ -93,6 +93,7 @@ TEST_CASE("node impulse: full scale times its sum is the worst case of every nod
 TEST_CASE("node impulse: nothing for a node that is not there and behind a median", "[arithmetic]") {
     CHECK(node_impulse(section_in("direct-1"), "stage 2, output", 8).empty());
     CHECK(node_impulse(section_in("direct-1"), "stage 1, section 1, state 0", 8).empty());
-    const auto median = described_chain({promised_stage("median", {{"points", std::int64_t{3}}}, {})});
+    const auto median = described_chain(
+        {promised_stage("median", {{"points", std::int64_t{3}}}, {{"rounding", std::string("floor")}})});
     CHECK(node_impulse(median, "stage 1, output", 8).empty());
 }

@@ -34,13 +34,12 @@ std::string text_of(const Prediction& prediction, int width = 100) {
 }  // namespace
 
 TEST_CASE("prediction report: points, sums and their formula", "[report]") {
-    CHECK_THAT(
-        text_of(small_prediction()),
-        Contains("error    response less declared reference, at most, while no rail is reached\n"
-                 "  point         steps of LSB      error in steps  sum |h|  sum h^2  sum h  at the output, LSB\n"
-                 "  stage 1, sum           0.5  3 errors, -1 .. 0        2      1.5      1             -3 .. 1\n"
-                 "  at the output: a formula (a source)\n"
-                 "  largest 3, rms 3, bias -3 .. 1 LSB (worst case: the stimulus is no white noise)\n"));
+    CHECK_THAT(text_of(small_prediction()),
+               Contains("error    response less declared reference, at most, while no rail is reached\n"
+                        "  point         step, LSB     error in steps  sum |h|  sum h^2  sum h  at the output, LSB\n"
+                        "  stage 1, sum        0.5  3 errors, -1 .. 0        2      1.5      1             -3 .. 1\n"
+                        "  at the output: a formula (a source)\n"
+                        "  largest 3, rms 3, bias -3 .. 1 LSB (worst case: the stimulus is no white noise)\n"));
 }
 
 TEST_CASE("prediction report: twelve cases have a line, more are counted", "[report]") {
@@ -120,8 +119,9 @@ TEST_CASE("prediction report: what rules do not see has its remedy, unless exact
     prediction.sight->sensitivity.failing_case = "step";
     CHECK_THAT(
         text_of(prediction),
-        Contains("  warning: a firmware that computes as promised fails error in \"step\", so what is seen there\n"
-                 "  tells nothing; write \"derived\" for its limits, or wider ones\n"));
+        Contains(
+            "  warning: a firmware that computes as promised fails error in \"step\", so what is seen there tells\n"
+            "  nothing; write \"derived\" for its limits, or wider ones\n"));
     prediction.sight->has_exact_rule = true;
     CHECK_THAT(text_of(prediction), !Contains("add it"));
     prediction.sight->sensitivity.unknown = "rounding is not said";
@@ -137,8 +137,8 @@ TEST_CASE("prediction report: what the plan leaves open stands in the first line
     told.largest_if_rounding_said = 0.5;
     CHECK_THAT(
         text_of(prediction),
-        Contains("assumed  stage 1 says nothing else, taken for it: each rounding anywhere from floor to half-up, "
-                 "an\n         accumulator as wide as it takes\n"
+        Contains("assumed  stage 1, where the plan says nothing: each rounding anywhere from floor to half-up, an\n"
+                 "         accumulator as wide as it takes\n"
                  "         rounding = \"half-up\" in the plan would make the largest error 0.5 LSB in place of 3\n"
                  "filter "));
 }
