@@ -131,6 +131,7 @@ Sensitivity sensitivity(const Plan& plan, const std::vector<std::size_t>& cases,
         for (std::size_t i = 0; i < changes.size(); ++i) {
             ChangeSeen& seen = result.changes[i];
             if (seen.answer == ChangeSeen::Answer::seen) continue;
+            if (!go_on()) return result;
             const std::vector<Code> response = changed_response(plan, the_case, changes[i], sent);
             if (response.empty() || response == declared) continue;
             count_differences(plan, response, declared, seen);

@@ -37,7 +37,7 @@ struct Sensitivity {
 inline constexpr std::int64_t sensitivity_samples = std::int64_t{1} << 17;
 
 /// Over the cases of these indices, rules `unchanged` left out. Looks at a case until a change is seen, so it costs a
-/// twin and a judge for each change and case in the worst case. `go_on` is asked between cases.
+/// twin and a judge for each change and case in the worst case. `go_on` is asked between cases and changes.
 Sensitivity sensitivity(
     const Plan& plan, const std::vector<std::size_t>& cases, const std::function<bool()>& go_on = [] { return true; });
 

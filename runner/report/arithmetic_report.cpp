@@ -78,18 +78,19 @@ std::string cases_text(const std::vector<PredictedCaseError>& cases, const Figur
 
 std::string unit_text(const Signal& signal) { return signal.output.has_lsb() ? " LSB" : ""; }
 
-std::string assumed_text(const PredictedArithmetic& told, const Signal& signal, const TextStyle& style) {
+std::string assumed_text(const PredictedArithmetic& told, const Signal& signal, const std::string& channels,
+                         const TextStyle& style) {
     std::string text;
     for (const PredictedAssumption& stage : told.assumed) {
-        std::string line = "stage " + std::to_string(stage.stage) + ", where the plan says nothing: ";
+        std::string line = channels + "stage " + std::to_string(stage.stage) + ", where the plan says nothing: ";
         for (std::size_t i = 0; i < stage.taken.size(); ++i) line += (i == 0 ? "" : ", ") + stage.taken[i];
         text += field(style, text.empty() ? "assumed" : "", line);
     }
     if (told.largest_if_rounding_said) {
         const auto [now, then] = compared_text(told.error.largest(), *told.largest_if_rounding_said);
         text += wrapped(style,
-                        "rounding = \"half-up\" in the plan would make the largest error " + then + unit_text(signal) +
-                            " in place of " + now,
+                        channels + "rounding = \"half-up\" in the plan would make the largest error " + then +
+                            unit_text(signal) + " in place of " + now,
                         field_columns);
     }
     return text;

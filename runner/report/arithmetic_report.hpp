@@ -11,8 +11,10 @@ namespace halflsb {
 /// " LSB", or "" where the output has none.
 std::string unit_text(const Signal& signal);
 
-/// What the plan does not say, for the first lines; "" where it says everything.
-std::string assumed_text(const PredictedArithmetic& told, const Signal& signal, const TextStyle& style);
+/// What the plan does not say, for the first lines; "" where it says everything. `channels` stands in front, "" or
+/// "channel 2: ".
+std::string assumed_text(const PredictedArithmetic& told, const Signal& signal, const std::string& channels,
+                         const TextStyle& style);
 
 /// Points, sums, and the cases that have other sums.
 std::string bound_text(const PredictedArithmetic& told, const Signal& signal, const TextStyle& style);

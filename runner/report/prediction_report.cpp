@@ -185,7 +185,8 @@ std::string prediction_text(const Prediction& prediction, const std::optional<Wi
             text_of(signal.output) + " out";
     text += signal.channels > 1 ? ", " + std::to_string(signal.channels) + " channels\n" : "\n";
     for (const PredictedFilter& filter : prediction.filters) {
-        if (filter.arithmetic) text += assumed_text(*filter.arithmetic, signal, style);
+        const std::string channels = prediction.filters.size() > 1 ? channels_text(filter.channels) + ": " : "";
+        if (filter.arithmetic) text += assumed_text(*filter.arithmetic, signal, channels, style);
     }
     if (prediction.filters.empty()) text += "filter   unknown: nothing is told of it on paper\n";
     for (const PredictedFilter& filter : prediction.filters) text += filter_text(filter, signal, style);
