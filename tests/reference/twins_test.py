@@ -82,7 +82,7 @@ def main():
     cases = [twin_cases.random_case(draw, kinds, kind) for kind in kinds for _ in range(CASES_PER_KIND)]
     cases += cases_of_plans(draw)
     lines = ask(program, "".join(message_of(case) for case in cases))
-    failures, shown, covered = len(lines) != len(cases), 0, collections.Counter()
+    failures, shown, covered = abs(len(lines) - len(cases)), 0, collections.Counter()
     for number, (case, line) in enumerate(zip(cases, lines)):
         problem = deviation(case, line)
         if problem:
