@@ -45,7 +45,8 @@ Lacking lacking_of(const FilterStage& stage, std::string_view word) {
     if (is_one_of(word, {"coefficient_bits", "coefficient_rounding"})) {
         if (family == Family::average)
             return {"a moving average without a reciprocal", "leave it out, or give division = \"reciprocal\""};
-        if (is_by_shift(stage)) return {"a one-pole that shifts", "leave it out, or give coefficient_fraction_bits"};
+        if (is_by_shift(stage))
+            return {"a one-pole that shifts", "leave it out, or give coefficient with coefficient_fraction_bits"};
     }
     return {text_of(family), "leave it out"};
 }

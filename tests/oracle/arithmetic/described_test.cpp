@@ -251,7 +251,7 @@ TEST_CASE("described: words of another kind of filter are refused in the stage's
         "accumulator_bits: accumulator_bits says nothing of float32 (leave it out)");
     CHECK(misplaced("one-pole", {{"shift_bits", whole(4)}}, {{"coefficient_bits", whole(16)}}) ==
           "coefficient_bits: coefficient_bits says nothing of a one-pole that shifts (leave it out, or give "
-          "coefficient_fraction_bits)");
+          "coefficient with coefficient_fraction_bits)");
     CHECK(misplaced("moving-average", {points}, {{"coefficient_bits", whole(16)}}) ==
           "coefficient_bits: coefficient_bits says nothing of a moving average without a reciprocal (leave it out, or "
           "give division = \"reciprocal\")");
