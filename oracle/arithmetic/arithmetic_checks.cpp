@@ -69,18 +69,40 @@ std::vector<NamedCoefficient> coefficients_of(const DescribedStage& described) {
     return all;
 }
 
-/// Fraction bits with which the whole list fits words of `bits`; nullopt: not even whole numbers do.
-std::optional<int> fitting_fraction_bits(const std::vector<NamedCoefficient>& all, int bits, int below,
-                                         Rounding rounding) {
+bool fits(double stored, int bits, int fraction) {
+    const double limit = std::ldexp(1.0, bits - 1 - fraction);
+    return stored >= -limit && stored < limit;
+}
+
+/// Fraction bits with which the whole list fits words of `bits`; nullopt: not even whole numbers do, or a one-pole
+/// would lose its coefficient.
+std::optional<int> fitting_fraction_bits(const DescribedStage& described, const std::vector<NamedCoefficient>& all,
+                                         int bits, int below) {
+    const Rounding rounding = described.stage.arithmetic.coefficient_rounding;
     for (int fraction = below - 1; fraction >= 0; --fraction) {
-        const double limit = std::ldexp(1.0, bits - 1 - fraction);
-        const bool fits = std::all_of(all.begin(), all.end(), [&](const NamedCoefficient& c) {
-            const double stored = rounded_coefficient(c.value, fraction, rounding);
-            return stored >= -limit && stored < limit;
-        });
-        if (fits) return fraction;
+        const auto stored = [&](const NamedCoefficient& c) { return rounded_coefficient(c.value, fraction, rounding); };
+        if (family_of(described.stage) == Family::one_pole && stored(all.front()) == 0.0) return std::nullopt;
+        if (std::all_of(all.begin(), all.end(),
+                        [&](const NamedCoefficient& c) { return fits(stored(c), bits, fraction); }))
+            return fraction;
     }
     return std::nullopt;
+}
+
+/// Words that hold the whole list, fewer fraction bits where need be.
+std::string fitting_words_text(const DescribedStage& described, const std::vector<NamedCoefficient>& all, int bits) {
+    const int fraction = described.coefficient_fraction_bits;
+    if (const auto fitting = fitting_fraction_bits(described, all, bits, fraction))
+        return "coefficient_fraction_bits = " + text_of(*fitting) + " would do";
+    const Rounding rounding = described.stage.arithmetic.coefficient_rounding;
+    for (int wider = bits + 1; wider <= 64; ++wider) {
+        if (std::all_of(all.begin(), all.end(), [&](const NamedCoefficient& c) {
+                return fits(rounded_coefficient(c.value, fraction, rounding), wider, fraction);
+            }))
+            return "coefficient_bits = " + text_of(wider) + " would do";
+    }
+    return "coefficient_bits = 64 with coefficient_fraction_bits = " +
+           text_of(fitting_fraction_bits(described, all, 64, fraction).value_or(0)) + " would do";
 }
 
 std::optional<Error> coefficient_outside(const DescribedStage& described) {
@@ -91,16 +113,12 @@ std::optional<Error> coefficient_outside(const DescribedStage& described) {
     // A shift stores nothing: its 1 is in the program.
     if (is_by_shift(described.stage)) return std::nullopt;
     const std::vector<NamedCoefficient> all = coefficients_of(described);
-    const double limit = std::ldexp(1.0, bits - 1 - fraction);
     for (const NamedCoefficient& c : all) {
-        const double stored = rounded_coefficient(c.value, fraction, rounding);
-        if (stored >= -limit && stored < limit) continue;
-        const auto fitting = fitting_fraction_bits(all, bits, fraction, rounding);
+        if (fits(rounded_coefficient(c.value, fraction, rounding), bits, fraction)) continue;
         return refuse(said_bits ? "coefficient_bits" : "coefficient_fraction_bits",
                       c.name + " = " + number_text(c.value) + " does not fit " + text_of(bits) + "-bit words with " +
                           text_of(fraction) + " fraction bits",
-                      fitting ? "coefficient_fraction_bits = " + text_of(*fitting) + " would do"
-                              : "give coefficient_bits that hold it");
+                      fitting_words_text(described, all, bits));
     }
     return std::nullopt;
 }
@@ -110,6 +128,21 @@ int bits_for(double largest) {
     int bits = 2;
     while (std::ldexp(1.0, bits - 1) < largest) ++bits;
     return bits;
+}
+
+/// For a product that no accumulator of 64 bits holds: `excess` bits must go.
+std::string fewer_fraction_bits_text(const DescribedStage& described, int excess) {
+    if (described.accumulator_fraction_bits && *described.accumulator_fraction_bits >= excess)
+        return "accumulator_fraction_bits = " + text_of(*described.accumulator_fraction_bits - excess) +
+               " with accumulator_bits = 64 would do";
+    const auto& of_state = described.stage.arithmetic.state_fraction_bits;
+    const bool feeds_back_states = of_state && described.structure != Structure::transposed_2;
+    if (feeds_back_states && *of_state - excess >= described.in.word.fraction_bits)
+        return "state_fraction_bits = " + text_of(*of_state - excess) + " with accumulator_bits = 64 would do";
+    const int left = described.coefficient_fraction_bits - excess;
+    if (left < 0) return "give fewer coefficient_fraction_bits and state_fraction_bits";
+    return "coefficient_fraction_bits = " + text_of(left) + " with accumulator_bits = 64 would do" +
+           (family_of(described.stage) == Family::one_pole ? "" : ", or rounding_at = \"product\"");
 }
 
 std::optional<Error> accumulator_too_narrow(const DescribedStage& described) {
@@ -145,7 +178,7 @@ std::optional<Error> accumulator_too_narrow(const DescribedStage& described) {
     return refuse("accumulator_bits",
                   "an accumulator of " + text_of(described.accumulator_bits) + " bits cannot hold " + what,
                   enough <= 64 ? "accumulator_bits = " + text_of(enough) + " would do for one; a sum needs more"
-                               : "store fewer fraction bits, or give rounding_at = \"product\"");
+                               : fewer_fraction_bits_text(described, enough - 64));
 }
 
 std::optional<Error> saving_without_loss(const DescribedStage& described) {
@@ -160,7 +193,7 @@ std::optional<Error> saving_without_loss(const DescribedStage& described) {
     }
     if (family_of(described.stage) == Family::one_pole && described.structure != Structure::direct_1) {
         return refuse("fraction_saving", "a one-pole of this structure saves no fraction",
-                      "give structure = \"direct-1\", or a state of more fraction bits");
+                      "give structure = \"direct-1\", or state_fraction_bits in place of fraction_saving");
     }
     return std::nullopt;
 }

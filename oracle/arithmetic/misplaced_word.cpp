@@ -33,6 +33,24 @@ bool has_word(const FilterStage& stage, std::string_view word) {
     return true;
 }
 
+/// What a stage is that lacks the word, and what else would have it.
+struct Lacking {
+    std::string_view stage, remedy;
+};
+
+Lacking lacking_of(const FilterStage& stage, std::string_view word) {
+    const Family family = family_of(stage);
+    if (family == Family::average && word == "summation")
+        return {"a running sum", "leave it out, or give structure = \"fresh-sum\""};
+    if (is_one_of(word, {"coefficient_bits", "coefficient_rounding"})) {
+        if (family == Family::average)
+            return {"a moving average without a reciprocal", "leave it out, or give division = \"reciprocal\""};
+        if (is_by_shift(stage))
+            return {"a one-pole that shifts", "leave it out, or give coefficient with coefficient_fraction_bits"};
+    }
+    return {text_of(family), "leave it out"};
+}
+
 std::string structures_text(Family family) {
     std::string text;
     for (const Structure structure : structures_of(family))
@@ -66,10 +84,13 @@ std::optional<Error> misplaced_word(const FilterStage& stage, const ParameterVal
             return refuse(word, std::string(word) + " says nothing of float32", "leave it out");
         }
         if (!is_float && word == "multiply_add") {
-            return refuse(word, "multiply_add says nothing of integers", "leave it out, or give number = \"float32\"");
+            return refuse(word, "multiply_add needs number = \"float32\"",
+                          "give number = \"float32\", or leave it out");
         }
         if (!has_word(stage, word)) {
-            return refuse(word, std::string(word) + " says nothing of " + std::string(text_of(family)), "leave it out");
+            const Lacking lacking = lacking_of(stage, word);
+            return refuse(word, std::string(word) + " says nothing of " + std::string(lacking.stage),
+                          std::string(lacking.remedy));
         }
         if (word == "rounding_at" && stage.arithmetic.rounding_at == RoundingAt::output &&
             (family != Family::sections || structure_of(stage) != Structure::direct_1)) {

@@ -16,6 +16,7 @@ int main() {
     stimulus_chapter(page);
     signal_file_chapter(page);
     filter_chapter(page);
+    arithmetic_chapter(page);
     design_chapter(page);
     coefficient_file_chapter(page);
     rule_chapter(page);

@@ -48,6 +48,7 @@ void each_chapter(Page& page);
 void stimulus_chapter(Page& page);
 void signal_file_chapter(Page& page);
 void filter_chapter(Page& page);
+void arithmetic_chapter(Page& page);
 void design_chapter(Page& page);
 void coefficient_file_chapter(Page& page);
 void rule_chapter(Page& page);

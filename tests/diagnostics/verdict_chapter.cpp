@@ -131,6 +131,30 @@ void show_rules(Page& page) {
          [](std::vector<Code> r) { return std::vector<Code>(r.size()); });
 }
 
+/// Rules that follow from the arithmetic.
+void show_arithmetic(Page& page) {
+    const auto show = [&](std::string_view done, const std::string& filter, const std::string& rule, Spoil spoil) {
+        Parts parts = small("", "shape = \"noise\"\nlength_samples = 1000\nlevel_ratio = 0.9\n");
+        parts.filter = "kind = \"fir\"\n" + filter;
+        parts.rule = rule;
+        const Plan plan = plan_of(page, done, parts);
+        if (!plan.cases.empty()) page.show(done, judged(plan, spoil(right_response(plan))));
+    };
+    const auto as_it_is = [](std::vector<Code> r) { return r; };
+    const std::string half =
+        "taps = [0.5]\n[filter.arithmetic]\nrounding = \"half-up\"\ncoefficient_fraction_bits = 15\n";
+    const std::string exact = "kind = \"exact\"\n";
+    show("exact, and every code is right", half, exact, as_it_is);
+    show("exact, and one code is wrong", half, exact, [](std::vector<Code> r) { return r[500] += 3, r; });
+    show("exact, and two codes are wrong", half, exact,
+         [](std::vector<Code> r) { return r[500] += 3, r[700] -= 1, r; });
+    const std::string derived = "kind = \"error\"\nmax_lsb = \"derived\"\nrms_lsb = \"derived\"\n";
+    show("a derived limit, and a code beyond it", half, derived, [](std::vector<Code> r) { return r[500] += 3, r; });
+    const std::string large = "taps = [0.9, 0.9, 0.9]\n[filter.arithmetic]\nrounding = \"half-up\"\n";
+    show("a derived limit, and an output that may wrap", large + "output_overflow = \"wrap\"\n", derived, as_it_is);
+    show("a derived limit, and an output that may saturate", large, derived, as_it_is);
+}
+
 /// What the reader of plans does not let come so far.
 void show_the_rest(Page& page) {
     Plan plan = plan_of(page, "no sample", small(""));
@@ -242,6 +266,7 @@ void show_summaries(Page& page) {
 void verdict_chapter(Page& page) {
     page.chapter("Rules that fail or are undecided");
     show_rules(page);
+    show_arithmetic(page);
     show_the_rest(page);
     page.chapter("Responses that are to be unchanged");
     show_unchanged(page);

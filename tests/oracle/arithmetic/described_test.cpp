@@ -149,8 +149,19 @@ TEST_CASE("described: a coefficient outside its word is refused with the fractio
           "coefficient_bits: taps[0] = 1 does not fit 16-bit words with 15 fraction bits (coefficient_fraction_bits = "
           "14 would do)");
     CHECK(refusal({taps(1e6)}) ==
-          "coefficient_bits: taps[0] = 1000000 does not fit 16-bit words with 15 fraction bits (give coefficient_bits "
-          "that hold it)");
+          "coefficient_bits: taps[0] = 1000000 does not fit 16-bit words with 15 fraction bits (coefficient_bits = 36 "
+          "would do)");
+    // With 7 fraction bits or fewer 8 bits would have to hold 1 - 1/1024, and 1/1024 is stored as 0.
+    const auto one_pole = [](int bits) {
+        return stage("one-pole", {{"coefficient", 1.0 / 1024}},
+                     {{"structure", std::string("direct-1")},
+                      {"coefficient_bits", whole(bits)},
+                      {"coefficient_fraction_bits", whole(15)}});
+    };
+    CHECK(refusal({one_pole(8)}) ==
+          "coefficient_bits: 1 - coefficient = 0.9990234375 does not fit 8-bit words with 15 fraction bits "
+          "(coefficient_bits = 16 would do)");
+    CHECK(refusal({one_pole(16)}) == "described");
 }
 
 TEST_CASE("described: an accumulator holds at least one product") {
@@ -166,6 +177,15 @@ TEST_CASE("described: an accumulator holds at least one product") {
                                  {"accumulator_bits", whole(17)},
                                  {"rounding_at", std::string("product")}});
     CHECK(refusal({rounded}) == "described");
+    // 0.5 2^40 2^31 = 2^70: 7 bits too many for 64, and the remedy is accepted.
+    const auto fine = [](int bits) {
+        return stage("fir", {{"taps", std::vector<double>{0.5}}},
+                     {{"coefficient_fraction_bits", whole(bits)}, {"accumulator_bits", whole(64)}});
+    };
+    CHECK(refusal({fine(40)}, "q31", "q31") ==
+          "accumulator_bits: an accumulator of 64 bits cannot hold one product, that of taps[0] = 0.5 "
+          "(coefficient_fraction_bits = 33 with accumulator_bits = 64 would do, or rounding_at = \"product\")");
+    CHECK(refusal({fine(33)}, "q31", "q31") == "described");
     const auto average = stage("moving-average", {{"points", whole(4)}}, {{"accumulator_bits", whole(15)}});
     CHECK(refusal({average}) ==
           "accumulator_bits: an accumulator of 15 bits cannot hold one sample (accumulator_bits = 16 would do for one; "
@@ -225,12 +245,18 @@ TEST_CASE("described: words of another kind of filter are refused in the stage's
     CHECK(misplaced("moving-average", {points}, {{"state_bits", whole(32)}}) ==
           "state_bits: state_bits says nothing of a moving average (leave it out)");
     CHECK(misplaced("moving-average", {points}, {{"multiply_add", std::string("fused")}}) ==
-          "multiply_add: multiply_add says nothing of integers (leave it out, or give number = \"float32\")");
+          "multiply_add: multiply_add needs number = \"float32\" (give number = \"float32\", or leave it out)");
     CHECK(
         misplaced("moving-average", {points}, {{"number", std::string("float32")}, {"accumulator_bits", whole(32)}}) ==
         "accumulator_bits: accumulator_bits says nothing of float32 (leave it out)");
     CHECK(misplaced("one-pole", {{"shift_bits", whole(4)}}, {{"coefficient_bits", whole(16)}}) ==
-          "coefficient_bits: coefficient_bits says nothing of a one-pole (leave it out)");
+          "coefficient_bits: coefficient_bits says nothing of a one-pole that shifts (leave it out, or give "
+          "coefficient with coefficient_fraction_bits)");
+    CHECK(misplaced("moving-average", {points}, {{"coefficient_bits", whole(16)}}) ==
+          "coefficient_bits: coefficient_bits says nothing of a moving average without a reciprocal (leave it out, or "
+          "give division = \"reciprocal\")");
+    CHECK(misplaced("moving-average", {points}, {{"summation", std::string("oldest-first")}}) ==
+          "summation: summation says nothing of a running sum (leave it out, or give structure = \"fresh-sum\")");
     CHECK(misplaced("fir", {{"taps", std::vector<double>{0.5}}}, {{"rounding_at", std::string("output")}}) ==
           "rounding_at: only sections in direct-1 shorten at the output alone (give rounding_at = \"sum\" or "
           "\"product\")");
