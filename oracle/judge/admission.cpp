@@ -4,11 +4,13 @@
 #include <charconv>
 #include <cmath>
 #include <cstdlib>
+#include <utility>
 
 #include "oracle/arithmetic/described.hpp"
 #include "oracle/filters/rates.hpp"
 #include "oracle/judge/derived_limits.hpp"
 #include "oracle/judge/latency_evidence.hpp"
+#include "oracle/judge/leftover.hpp"
 #include "oracle/judge/response_verdict.hpp"
 #include "oracle/judge/units.hpp"
 
@@ -76,14 +78,6 @@ void check_unchanged(const Case& the_case, const Rule& rule, std::vector<Refusal
                         "start it with \"reset\" or \"flush\", or write the rule in another case"});
 }
 
-/// Whether `start_samples` zeros leave nothing in the firmware's states, rounding errors and remainders included.
-bool forgets_all(const DescribedStage& stage) {
-    if (stage.fraction_saving) return false;
-    if (std::holds_alternative<Fir>(stage.stage.design)) return true;
-    return std::holds_alternative<MovingAverage>(stage.stage.design) &&
-           (stage.number == NumberKind::integer || stage.structure == Structure::fresh_sum);
-}
-
 /// A twin needs the whole arithmetic, and starts as the board does.
 void check_exact(const Plan& plan, const Case& the_case, const Rule& rule, std::vector<Refusal>& refusals) {
     if (plan.filter_is_unknown) return;
@@ -101,7 +95,8 @@ void check_exact(const Plan& plan, const Case& the_case, const Rule& rule, std::
                                 missing->error.remedy});
             return;
         }
-        for (const DescribedStage& stage : result.described->stages) forgets = forgets && forgets_all(stage);
+        const auto samples = samples_to_forget(*result.described);
+        forgets = forgets && samples && *samples <= the_case.start_samples;
     }
     if (the_case.start == Start::running || (the_case.start == Start::flush && !forgets)) {
         refusals.push_back({rule.position,
@@ -112,14 +107,42 @@ void check_exact(const Plan& plan, const Case& the_case, const Rule& rule, std::
     }
 }
 
+/// Why no bound covers this arithmetic. {problem, remedy}
+std::optional<std::pair<std::string, std::string>> not_covered(const Signal& signal, const DescribedChain& chain) {
+    int exponent = 0;
+    if (std::frexp(signal.output_per_input, &exponent) != 0.5) {
+        return std::pair("output_per_input is no power of two, and nothing says how it is rounded",
+                         "give the scale as a stage of its own, or a number for the limit");
+    }
+    for (std::size_t i = 0; i < chain.stages.size(); ++i) {
+        const DescribedStage& stage = chain.stages[i];
+        if (stage.stage.initial == Initial::zeros) continue;
+        // Whole numbers that start as if the first sample had gone on for ever err as if it had.
+        const bool is_finite = samples_to_forget(stage).has_value() && stage.number == NumberKind::integer;
+        if (stage.stage.initial == Initial::first_sample && is_finite) continue;
+        return std::pair(
+            "the state that initial puts into stage " + std::to_string(i + 1) + " is rounded in a way that nobody said",
+            "leave initial out, or give a number for the limit");
+    }
+    return std::nullopt;
+}
+
 /// A derived limit must be a limit: finite, and narrower than full scale.
 void check_derived(const Plan& plan, const Case& the_case, const Rule& rule, std::vector<Refusal>& refusals) {
     const auto& asked = std::get<ErrorRule>(rule.kind);
     if (plan.filter_is_unknown || !is_derived(asked)) return;
     const double widest = full_scale_value(plan.signal.output);
     for (int channel = 1; channel <= plan.signal.channels; ++channel) {
+        const auto chain = described_channel(plan, the_case, channel);
+        if (!chain) return;  // the reader has refused it
+        if (const auto why = not_covered(plan.signal, *chain)) {
+            refusals.push_back({rule.position,
+                                "no limit follows from the arithmetic in case \"" + the_case.name + "\": " + why->first,
+                                why->second});
+            return;
+        }
         const auto limits = derived_limits(plan, the_case, channel);
-        if (!limits) return;  // the reader has refused it
+        if (!limits) return;
         double wanted = 0.0;
         if (asked.largest && asked.largest->is_derived) wanted = limits->largest;
         if (asked.rms && asked.rms->is_derived) wanted = std::max(wanted, limits->worst_rms);

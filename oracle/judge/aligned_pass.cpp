@@ -141,8 +141,10 @@ RuleVerdict AlignedPass::error_verdict(const ErrorRuleState& state, const RailWa
     };
     told(rule.largest, "max", figures.largest, derived_.largest);
     told(rule.rms, "rms", figures.rms, clip ? derived_.worst_rms : derived_.rms);
+    // The limit of the bias is that of the whole record: the mean over a part of it may be as large as any sample.
+    const double derived_bias = clip ? derived_.worst_bias : derived_.bias;
     told(rule.bias, "bias", rule.bias ? std::abs(figures.bias) : figures.bias,
-         clip ? derived_.worst_bias : derived_.bias);
+         state.exempt > 0 ? derived_.largest : derived_bias);
     // The limit holds for the magnitude; which way the firmware leans is the first thing its author asks.
     if (rule.bias && figures.bias < 0.0)
         verdict.figures.back().note = rule.bias->is_derived ? "negative, derived" : "negative";

@@ -4,6 +4,7 @@
 #include <cmath>
 #include <vector>
 
+#include "oracle/judge/leftover.hpp"
 #include "oracle/judge/units.hpp"
 
 namespace halflsb {
@@ -46,13 +47,14 @@ std::optional<DerivedLimits> derived_limits(const Plan& plan, const Case& the_ca
     const double gain = std::fabs(plan.signal.output_per_input);
     BoundUse use = bound_use(plan, the_case, channel);
     const ErrorBound bound = derive(*chain, use);
-    DerivedLimits limits{gain * bound.largest(), gain * bound.rms, gain * bound.bias(), gain * bound.rms,
-                         gain * bound.bias()};
+    const Leftover left = leftover(*chain, plan, the_case);
+    const double rms = gain * (bound.rms + left.rms), bias = gain * (bound.bias() + left.bias);
+    DerivedLimits limits{gain * (bound.largest() + left.largest), rms, bias, rms, bias};
     if (!use.noise_like) return limits;
     use.noise_like = false;
     const ErrorBound worst = derive(*chain, use);
-    limits.worst_rms = gain * worst.rms;
-    limits.worst_bias = gain * worst.bias();
+    limits.worst_rms = gain * (worst.rms + left.rms);
+    limits.worst_bias = gain * (worst.bias() + left.bias);
     return limits;
 }
 

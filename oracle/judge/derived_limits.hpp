@@ -22,6 +22,7 @@ struct DerivedLimits {
 BoundUse bound_use(const Plan& plan, const Case& the_case, int channel);
 /// What the arithmetic of a channel says, counted from 1; nullopt where it cannot be described (the reader refuses it).
 std::optional<DescribedChain> described_channel(const Plan& plan, const Case& the_case, int channel);
+/// With what may be left of the case before (leftover.hpp), in a case that does not start from a reset.
 /// nullopt where the arithmetic cannot be described. Costs the impulse responses of all paths from a rounding to the
 /// output, some 40 time constants of the slowest pole each.
 std::optional<DerivedLimits> derived_limits(const Plan& plan, const Case& the_case, int channel);

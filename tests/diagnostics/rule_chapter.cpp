@@ -101,6 +101,13 @@ void rule_chapter(Page& page) {
     parts.signal = "rate_hz = 1200.0\ninput = \"f32\"\noutput = \"f32\"\n";
     show_plan(page, "a limit in steps of a float format", parts.text());
     parts = {};
+    parts.rule = "kind = \"error\"\nmax_lsb = \"derived\"\n";
+    parts.signal = "rate_hz = 1200.0\ninput = \"q15\"\noutput = \"i16\"\noutput_per_input = 30000.0\n";
+    show_plan(page, "a derived limit behind a gain that is no power of two", parts.text());
+    parts.signal = Parts{}.signal;
+    parts.filter = "kind = \"one-pole\"\nshift_bits = 3\ninitial = \"first-sample\"\n";
+    show_plan(page, "a derived limit of a preloaded recursion", parts.text());
+    parts = {};
     parts.of_case = "start = \"running\"\ndiscard_samples = 64\n";
     parts.after = "[[case.rule]]\nkind = \"unchanged\"\n";
     show_plan(page, "an unchanged response of a case that starts running", parts.text());

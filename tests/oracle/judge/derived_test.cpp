@@ -1,0 +1,179 @@
+// Limits that follow from the arithmetic: where they are refused, and what a start adds to them.
+#include <catch2/catch.hpp>
+
+#include "oracle/judge/admission.hpp"
+#include "oracle/judge/derived_limits.hpp"
+#include "oracle/judge/leftover.hpp"
+#include "tests/oracle/judge/judging.hpp"
+#include "tests/support/plans.hpp"
+
+using namespace halflsb;
+using Catch::Matchers::WithinRel;
+using test::judge;
+using test::values;
+
+namespace {
+
+constexpr double lsb = 1.0 / 32768.0;
+
+Case noise_case(const Plan& plan, const Rule& rule) {
+    return test::a_case(plan, "noise", values({{"level_ratio", 0.5}, {"length_samples", std::int64_t{3000}}}),
+                        {rule, test::implicit_latency()});
+}
+
+Rule derived_rule(const Plan& plan) { return test::rule(plan, "error", values({{"max_lsb", std::string("derived")}})); }
+
+std::vector<Refusal> refused(const Plan& plan) { return refusals(plan, noise_case(plan, derived_rule(plan))); }
+
+/// y = y + (x - y) / 8, rounded once, halves upward.
+Plan one_pole_plan() {
+    Plan plan = test::moving_average_plan();
+    plan.filter[0].design = BiquadCascade{{{0.125, 0.0, 0.0, -0.875, 0.0}}};
+    plan.filter[0].kind = "biquad-cascade";
+    plan.filter[0].coefficient_fraction_bits = 3;
+    plan.filter[0].arithmetic.coefficient_fraction_bits = 3;
+    plan.filter[0].arithmetic.rounding = Rounding::half_up;
+    return plan;
+}
+
+}  // namespace
+
+TEST_CASE("derived: a gain that is no power of two has no limit", "[judge]") {
+    Plan plan = test::moving_average_plan();
+    plan.signal.output = *sample_format("i16");
+    for (const double gain : {32768.0, 1.0, 0.25}) {
+        plan.signal.output_per_input = gain;
+        CHECK(refused(plan).empty());
+    }
+    for (const double gain : {30000.0, 32769.0, -32768.0}) {
+        plan.signal.output_per_input = gain;
+        const auto found = refused(plan);
+        REQUIRE(found.size() == 1);
+        CHECK(found[0].position.line == 20);
+        CHECK(found[0].problem ==
+              "no limit follows from the arithmetic in case \"a case\": output_per_input is no power of two, and "
+              "nothing says how it is rounded");
+        CHECK(found[0].remedy == "give the scale as a stage of its own, or a number for the limit");
+    }
+}
+
+TEST_CASE("derived: a preloaded recursion has no limit, a preloaded sum of whole numbers has", "[judge]") {
+    Plan plan = one_pole_plan();
+    CHECK(refused(plan).empty());
+    plan.filter[0].initial = Initial::first_sample;
+    const auto found = refused(plan);
+    REQUIRE(found.size() == 1);
+    CHECK(found[0].problem ==
+          "no limit follows from the arithmetic in case \"a case\": the state that initial puts into stage 1 is "
+          "rounded in a way that nobody said");
+    CHECK(found[0].remedy == "leave initial out, or give a number for the limit");
+
+    plan = test::moving_average_plan();
+    plan.filter[0].initial = Initial::first_sample;
+    CHECK(refused(plan).empty());
+    plan.filter[0].initial = Initial::growing;
+    CHECK(refused(plan).size() == 1);
+    plan.filter[0].initial = Initial::first_sample;
+    plan.filter[0].arithmetic.number = NumberKind::float32;
+    CHECK(refused(plan).size() == 1);
+}
+
+TEST_CASE("derived: what a flush leaves of the case before is in the limits", "[judge]") {
+    const Plan plan = one_pole_plan();
+    Case the_case = noise_case(plan, derived_rule(plan));
+    const DerivedLimits from_reset = *derived_limits(plan, the_case, 1);
+    // sum of h[k] = 7^k / 8^(k+1) over k > N is (7/8)^(N+1): below half an LSB of 2^-15 from N + 1 = 84 on.
+    CHECK(flush_samples(plan.filter, 1.0, lsb / 2.0) == 83);
+    the_case.start_samples = 83;
+    for (const Start start : {Start::flush, Start::running}) {
+        the_case.start = start;
+        const double tail = std::pow(0.875, 84);
+        CHECK_THAT(derived_limits(plan, the_case, 1)->largest, WithinRel(from_reset.largest + tail, 1e-9));
+        const double count = start == Start::flush ? 3000.0 : 2917.0;
+        const Leftover left = leftover(*described_channel(plan, the_case, 1), plan, the_case);
+        CHECK_THAT(left.largest, WithinRel(tail, 1e-9));
+        CHECK_THAT(left.bias, WithinRel(8.0 * tail / count, 1e-6));  // a geometric series of 7/8
+        CHECK_THAT(left.rms, WithinRel(tail / std::sqrt((1.0 - 0.875 * 0.875) * count), 1e-6));
+    }
+    the_case.start_samples = 0;  // running on, all of the past is in the first sample
+    CHECK_THAT(leftover(*described_channel(plan, the_case, 1), plan, the_case).largest, WithinRel(0.875, 1e-9));
+}
+
+TEST_CASE("derived: a filter that has forgotten all adds nothing to its limits", "[judge]") {
+    const Plan plan = test::moving_average_plan();
+    Case the_case = noise_case(plan, derived_rule(plan));
+    the_case.start = Start::flush;
+    the_case.start_samples = 15;
+    CHECK(leftover(*described_channel(plan, the_case, 1), plan, the_case).largest == 0.0);
+    the_case.start_samples = 14;
+    CHECK_THAT(leftover(*described_channel(plan, the_case, 1), plan, the_case).largest, WithinRel(1.0 / 16.0, 1e-9));
+}
+
+TEST_CASE("derived: where samples are left out, the bias of the rest is held to the largest error alone", "[judge]") {
+    Plan plan = one_pole_plan();
+    // Gain 1 and an overshoot: the step to the top code reaches the rail, and what follows is judged by exact alone.
+    plan.filter[0].design = BiquadCascade{{{0.03125, 0.0, 0.0, -1.875, 0.90625}}};
+    plan.filter[0].coefficient_fraction_bits = plan.filter[0].arithmetic.coefficient_fraction_bits = 14;
+    const Rule rule =
+        test::rule(plan, "error", values({{"max_lsb", std::string("derived")}, {"bias_lsb", std::string("derived")}}));
+    for (const double level : {0.2, 1.0}) {
+        const Case the_case = test::a_case(
+            plan, "step",
+            values({{"level_ratio", level}, {"at_samples", std::int64_t{100}}, {"length_samples", std::int64_t{4000}}}),
+            {rule});
+        const RuleVerdict verdict = judge(plan, the_case, test::right_response(plan, the_case)).rules.at(0);
+        CHECK(verdict.verdict == Verdict::pass);
+        REQUIRE(verdict.figures.size() >= 3);
+        const JudgedFigure& largest = verdict.figures[0];
+        const JudgedFigure& bias = verdict.figures[2];
+        REQUIRE(bias.name == "bias");
+        INFO(verdict.reason);
+        if (level < 1.0) {
+            // Floor to half-up through the gain 32 at zero frequency; sum |h| is larger.
+            CHECK(*bias.limit < 0.8 * *largest.limit);
+        } else {
+            CHECK(*bias.limit == *largest.limit);
+        }
+    }
+}
+
+TEST_CASE("exact: a flush that leaves less than half an LSB leaves something to the bit", "[judge]") {
+    Plan plan = test::moving_average_plan();
+    // The last tap is a quarter of an LSB at full scale: the flush waits for the other two alone.
+    plan.filter[0].design = Fir{{0.5, 0.25, 0x1p-17}};
+    plan.filter[0].kind = "fir";
+    plan.filter[0].coefficient_fraction_bits = 17;
+    plan.filter[0].arithmetic.coefficient_fraction_bits = 17;
+    plan.filter[0].arithmetic.rounding = Rounding::half_up;
+    CHECK(flush_samples(plan.filter, 1.0, lsb / 2.0) == 1);
+    Case the_case = noise_case(plan, test::rule(plan, "exact", {}));
+    the_case.start = Start::flush;
+    the_case.start_samples = 1;
+    const auto found = refusals(plan, the_case);
+    REQUIRE(found.size() == 1);
+    CHECK(found[0].problem ==
+          "case \"a case\" starts with a flush, which leaves the firmware in a state that nobody knows to the bit");
+    the_case.start_samples = 2;
+    CHECK(refusals(plan, the_case).empty());
+    // Stored as multiples of 2^-15 the tap is 0 and the firmware knows two.
+    plan.filter[0].coefficient_fraction_bits = plan.filter[0].arithmetic.coefficient_fraction_bits = 15;
+    plan.filter[0].design = Fir{{0.5, 0.25, 0x1p-18}};
+    the_case.start_samples = 1;
+    CHECK(refusals(plan, the_case).empty());
+}
+
+TEST_CASE("exact: a running sum that saturates is wrong ever after, and no flush mends it", "[judge]") {
+    Plan plan = test::moving_average_plan();
+    StageArithmetic& arithmetic = plan.filter[0].arithmetic;
+    arithmetic.rounding = Rounding::half_up;
+    arithmetic.accumulator_overflow = Overflow::saturate;
+    Case the_case = noise_case(plan, test::rule(plan, "exact", {}));
+    the_case.start = Start::flush;
+    the_case.start_samples = 15;
+    arithmetic.accumulator_bits = 20;  // 16 times -2^15 is -2^19
+    CHECK(refusals(plan, the_case).empty());
+    arithmetic.accumulator_bits = 19;
+    CHECK(refusals(plan, the_case).size() == 1);
+    arithmetic.accumulator_overflow = Overflow::wrap;
+    CHECK(refusals(plan, the_case).empty());
+}
