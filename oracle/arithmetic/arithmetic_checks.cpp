@@ -161,9 +161,11 @@ std::optional<Error> accumulator_too_narrow(const DescribedStage& described) {
         // Of transposed-2 what is fed back are output words; its states have the fraction bits of products already.
         const bool feeds_back_states = is_recursive && described.structure != Structure::transposed_2;
         const Word& target = feeds_back_states ? described.state : described.out.word;
-        const int most = is_recursive
-                             ? std::max(in.fraction_bits, target.fraction_bits) + described.coefficient_fraction_bits
-                             : terms;
+        int most = is_recursive ? std::max(in.fraction_bits, target.fraction_bits) + described.coefficient_fraction_bits
+                                : terms;
+        // The input of direct-2 is a term without a coefficient.
+        if (is_recursive && described.structure == Structure::direct_2)
+            most = std::max(in.fraction_bits, target.fraction_bits + described.coefficient_fraction_bits);
         const int fraction = accumulator_fraction_bits_of(described, most, target.fraction_bits);
         largest = 0.0;
         for (const NamedCoefficient& c : coefficients_of(described)) {

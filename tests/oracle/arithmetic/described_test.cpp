@@ -192,6 +192,21 @@ TEST_CASE("described: an accumulator holds at least one product") {
           "a sum needs more)");
 }
 
+TEST_CASE("described: the input of direct-2 needs an accumulator of its own fraction bits only") {
+    const auto with = [](int bits) {
+        return biquad({{"coefficient_fraction_bits", whole(14)},
+                       {"structure", std::string("direct-2")},
+                       {"state_bits", whole(20)},
+                       {"state_fraction_bits", whole(10)},
+                       {"accumulator_bits", whole(bits)}});
+    };
+    // x has 31 fraction bits, a product of a state 10 + 14: 1.75 2^31 lies between 2^31 and 2^32, so 33 bits hold it.
+    CHECK(refusal({with(33)}, "q31", "q15") == "described");
+    CHECK(refusal({with(32)}, "q31", "q15") ==
+          "accumulator_bits: an accumulator of 32 bits cannot hold one product, that of -a1 = 1.75 "
+          "(accumulator_bits = 33 would do for one; a sum needs more)");
+}
+
 TEST_CASE("described: a division that cannot be is refused") {
     const auto average = [](int points, std::initializer_list<Given> promised) {
         return stage("moving-average", {{"points", whole(points)}}, promised);
