@@ -9,9 +9,9 @@ void halflsb_cobs_encode(const uint8_t* content, size_t count, void (*write)(con
         code = (uint8_t)(run + 1);
         write(&code, 1);
         if (run > 0) write(content, run);
-        content += run;
         count -= run;
         if (count == 0) return;
+        content += run;
         if (run < 254) { /* the group stands for the zero that ended it */
             content++;
             count--;

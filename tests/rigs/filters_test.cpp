@@ -31,7 +31,8 @@ std::vector<std::uint8_t> noise(const FilterParts& parts, std::size_t instants) 
     const std::uint32_t mask = 0xFFFFFFFFu >> (32 - value_bits(parts.format));
     const std::int32_t bottom = zero_code(parts.format) - static_cast<std::int32_t>(mask / 2) - 1;
     for (std::size_t i = 0; i < count; ++i) {
-        put_code(words.data(), i, parts.format, static_cast<std::int32_t>(std::int64_t{bottom} + (generator() & mask)));
+        put_code(words.data(), i, parts.format,
+                 static_cast<std::int32_t>(std::int64_t{bottom} + static_cast<std::int64_t>(generator() & mask)));
     }
     put_code(words.data(), count / 3, parts.format, bottom);
     put_code(words.data(), count / 2, parts.format, static_cast<std::int32_t>(std::int64_t{bottom} + mask));

@@ -80,7 +80,6 @@ TEST_CASE("glob: star for any number of characters, question mark for one", "[cl
 
 TEST_CASE("labels: any of those asked for, within what --case selects", "[cli]") {
     const std::vector<Names> labels{{"quick"}, {"quick", "slow"}, {}, {"slow"}};
-    using Indices = std::vector<std::size_t>;
     const Indices all{0, 1, 2, 3};
     CHECK(*select_labelled(all, labels, {}) == all);
     CHECK(*select_labelled(all, labels, {"quick"}) == Indices{0, 1});
