@@ -38,14 +38,16 @@ public:
         BoundTerm term = term_of(point, sums);
         bound_.lower += term.lower;
         bound_.upper += term.upper;
-        worst_bias_lower_ += term.bias_lower;
-        worst_bias_upper_ += term.bias_upper;
+        bound_.worst_bias_lower += term.bias_lower;
+        bound_.worst_bias_upper += term.bias_upper;
+        const double any = product(point.error.largest(), sums.l1());
+        bound_.worst_rms += any;
         term.is_statistical = use_.noise_like && sums.is_one_response && is_far_above(point);
         if (term.is_statistical) {
             add_noise(point, sums, term);
         } else {
             all_statistical_ = false;
-            any_rms_ += product(point.error.largest(), sums.l1());
+            any_rms_ += any;
         }
         bias_lower_ += term.bias_lower;
         bias_upper_ += term.bias_upper;
@@ -64,9 +66,12 @@ public:
         const double cross = 2.0 * constant_rms_ * std::sqrt(2.0 * t * peak);
         const double rms = any_rms_ + std::sqrt(constant_rms_ * constant_rms_ + cross + noise) + reference_error;
         bound_.rms = std::min(rms, bound_.largest());
+        bound_.worst_rms = std::min(bound_.worst_rms + reference_error, bound_.largest());
+        bound_.worst_bias_lower -= reference_error;
+        bound_.worst_bias_upper += reference_error;
         const double spread = std::sqrt(2.0 * t * bias_variance_ / count) + reference_error;
-        bound_.bias_lower = std::max(bias_lower_ - spread, worst_bias_lower_ - reference_error);
-        bound_.bias_upper = std::min(bias_upper_ + spread, worst_bias_upper_ + reference_error);
+        bound_.bias_lower = std::max(bias_lower_ - spread, bound_.worst_bias_lower);
+        bound_.bias_upper = std::min(bias_upper_ + spread, bound_.worst_bias_upper);
     }
 
 private:
@@ -132,7 +137,7 @@ private:
     double any_rms_ = 0.0;       ///< of errors that may go with anything
     double constant_rms_ = 0.0;  ///< of constant means
     double variance_ = 0.0, peak_amplitude_ = 0.0, bias_variance_ = 0.0;
-    double bias_lower_ = 0.0, bias_upper_ = 0.0, worst_bias_lower_ = 0.0, worst_bias_upper_ = 0.0;
+    double bias_lower_ = 0.0, bias_upper_ = 0.0;
 };
 
 }  // namespace

@@ -43,6 +43,8 @@ struct ErrorBound {
     double lower = 0.0, upper = 0.0;  ///< of the error; may be infinite
     double rms = 0.0;
     double bias_lower = 0.0, bias_upper = 0.0;
+    /// Whatever the stimulus is: what rms and bias are without noise.
+    double worst_rms = 0.0, worst_bias_lower = 0.0, worst_bias_upper = 0.0;
     /// rms and bias count on noise for every point; false: for some, or all, the worst case stands in them.
     bool is_statistical = false;
     double reference_error = 0.0;  ///< of double precision itself; in lower, upper, rms and bias
@@ -50,6 +52,7 @@ struct ErrorBound {
 
     double largest() const { return upper > -lower ? upper : -lower; }
     double bias() const { return bias_upper > -bias_lower ? bias_upper : -bias_lower; }
+    double worst_bias() const { return worst_bias_upper > -worst_bias_lower ? worst_bias_upper : -worst_bias_lower; }
 };
 
 ErrorBound derive(const DescribedChain& chain, const BoundUse& use = {});

@@ -27,24 +27,22 @@ std::string exempt_text(std::int64_t exempt, const RailWatch* rails) {
 
 }  // namespace
 
-AlignedPass::AlignedPass(const Plan& plan, const Case& the_case, int channel, int lag_samples)
+AlignedPass::AlignedPass(const Plan& plan, const Case& the_case, int channel, int lag_samples,
+                         const DerivedLimits& derived)
     : plan_(plan),
       case_(the_case),
       channel_(channel),
       is_driven_(is_driven(the_case, channel)),
       lag_(lag_samples),
       first_judged_(first_judged_sample(the_case)),
+      derived_(derived),
       to_skip_(lag_samples < 0 ? static_cast<std::size_t>(-lag_samples) : 0) {
     if (first_judged_ > 0 && lag_samples > 0) first_judged_ += lag_samples;
-    bool has_derived = false;
     for (const Rule& rule : the_case.rules) {
         if (const auto* error = std::get_if<ErrorRule>(&rule.kind); error != nullptr && says_something(*error)) {
-            const bool derived = is_derived(*error);
-            if (derived && !has_derived) derived_ = derived_limits(plan, the_case, channel).value_or(DerivedLimits{});
-            has_derived = has_derived || derived;
             std::optional<double> limit;
             if (error->largest) limit = value_of(*error->largest, plan.signal, derived_.largest);
-            error_rules_.push_back({&rule, ErrorMeasure(limit), FirstBadWatch(plan.signal.output), derived});
+            error_rules_.push_back({&rule, ErrorMeasure(limit), FirstBadWatch(plan.signal.output), is_derived(*error)});
             error_rules_.back().measure.start_at(first_judged_);
         }
     }

@@ -27,7 +27,8 @@ namespace halflsb {
 class AlignedPass {
 public:
     /// The plan and the case must outlive the pass; channels count from 1.
-    AlignedPass(const Plan& plan, const Case& the_case, int channel, int lag_samples);
+    /// `derived` are asked_limits() of the channel.
+    AlignedPass(const Plan& plan, const Case& the_case, int channel, int lag_samples, const DerivedLimits& derived);
     void add(const ReferenceBlock& reference, std::span<const Code> response);
 
     int lag_samples() const { return lag_; }
@@ -65,7 +66,7 @@ private:
     std::int64_t first_judged_;
     std::int64_t next_index_ = 0;  ///< of the next response sample that meets its partner
     std::vector<ErrorRuleState> error_rules_;
-    DerivedLimits derived_;  ///< where some rule asks for them
+    DerivedLimits derived_;
     std::unique_ptr<ResponseMeasure> response_measure_;
     std::optional<ExactCount> exact_;
     // What waits for its partner.

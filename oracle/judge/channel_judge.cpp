@@ -17,8 +17,8 @@ const Rule* find_latency_rule(const Case& the_case) {
     return found == the_case.rules.end() ? nullptr : &*found;
 }
 
-double evidence_needed(const Plan& plan, const Case& the_case, int channel) {
-    const double sigma = latency_sigma(plan, the_case, channel);
+double evidence_needed(const Case& the_case, const Signal& signal, const DerivedLimits& derived) {
+    const double sigma = latency_sigma(the_case, signal, derived);
     return latency_evidence_ratio * sigma * sigma;
 }
 
@@ -37,11 +37,12 @@ ChannelJudge::ChannelJudge(const Plan& plan, const Case& the_case, int channel)
       expected_lag_(expected_lag_of(the_case)),
       wanted_(wanted_references(the_case, channel)),
       reference_(plan, the_case, channel, wanted_),
-      pass_(plan, the_case, channel, expected_lag_),
+      derived_(asked_limits(plan, the_case, channel)),
+      pass_(plan, the_case, channel, expected_lag_, derived_),
       window_(lag_window_of(the_case)),
       lag_(window_, expected_lag_, first_lag_sample(the_case, window_)),
       discrimination_(window_, first_lag_sample(the_case, window_)),
-      evidence_needed_(evidence_needed(plan, the_case, channel)) {}
+      evidence_needed_(evidence_needed(the_case, plan.signal, derived_)) {}
 
 void ChannelJudge::add(std::span<const Code> sent, std::span<const Code> response) {
     const ReferenceBlock block = reference_.next(sent);
@@ -70,8 +71,8 @@ bool ChannelJudge::begin_second_pass() {
     lags_ = lag_.value();
     const int measured = lags_->best_lag;
     if (!std::isfinite(lags_->residual_at(measured)) || measured == expected_lag_) return false;
-    second_.emplace(
-        SecondPass{AlignedPass(plan_, case_, channel_, measured), ReferenceSource(plan_, case_, channel_, wanted_)});
+    second_.emplace(SecondPass{AlignedPass(plan_, case_, channel_, measured, derived_),
+                               ReferenceSource(plan_, case_, channel_, wanted_)});
     return true;
 }
 

@@ -45,22 +45,24 @@ std::optional<DerivedLimits> derived_limits(const Plan& plan, const Case& the_ca
     const auto chain = described_channel(plan, the_case, channel);
     if (!chain) return std::nullopt;
     const double gain = std::fabs(plan.signal.output_per_input);
-    BoundUse use = bound_use(plan, the_case, channel);
-    const ErrorBound bound = derive(*chain, use);
+    const ErrorBound bound = derive(*chain, bound_use(plan, the_case, channel));
     const Leftover left = leftover(*chain, plan, the_case);
-    const double rms = gain * (bound.rms + left.rms), bias = gain * (bound.bias() + left.bias);
-    DerivedLimits limits{gain * (bound.largest() + left.largest), rms, bias, rms, bias};
-    if (!use.noise_like) return limits;
-    use.noise_like = false;
-    const ErrorBound worst = derive(*chain, use);
-    limits.worst_rms = gain * (worst.rms + left.rms);
-    limits.worst_bias = gain * (worst.bias() + left.bias);
-    return limits;
+    return DerivedLimits{gain * (bound.largest() + left.largest), gain * (bound.rms + left.rms),
+                         gain * (bound.bias() + left.bias), gain * (bound.worst_rms + left.rms),
+                         gain * (bound.worst_bias() + left.bias)};
 }
 
 bool is_derived(const ErrorRule& rule) {
     const auto derived = [](const std::optional<Limit>& limit) { return limit && limit->is_derived; };
     return derived(rule.largest) || derived(rule.rms) || derived(rule.bias);
+}
+
+DerivedLimits asked_limits(const Plan& plan, const Case& the_case, int channel) {
+    const bool is_asked = std::any_of(the_case.rules.begin(), the_case.rules.end(), [](const Rule& rule) {
+        const auto* error = std::get_if<ErrorRule>(&rule.kind);
+        return error != nullptr && is_derived(*error);
+    });
+    return is_asked ? derived_limits(plan, the_case, channel).value_or(DerivedLimits{}) : DerivedLimits{};
 }
 
 double value_of(const Limit& limit, const Signal& signal, double derived) {

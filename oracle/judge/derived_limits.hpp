@@ -29,6 +29,8 @@ std::optional<DerivedLimits> derived_limits(const Plan& plan, const Case& the_ca
 
 /// Some limit of the rule is derived.
 bool is_derived(const ErrorRule& rule);
+/// Those that an error rule of the case asks for; zeros where none does.
+DerivedLimits asked_limits(const Plan& plan, const Case& the_case, int channel);
 /// The limit as a value of the output; of a derived one the entry of `derived`.
 double value_of(const Limit& limit, const Signal& signal, double derived);
 

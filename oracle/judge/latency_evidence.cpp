@@ -37,7 +37,7 @@ LatencyEvidence evidence_of(const Plan& plan, const Case& the_case, int channel)
         std::min(the_case.stimulus->length_samples(), latency_evidence_samples(chain_of(plan, the_case, channel)));
     evidence.window = lag_window_for(evidence.samples - first_judged_sample(the_case));
     evidence.expected_is_outside = std::abs(expected_lag_of(the_case)) > lag_window_of(the_case);
-    const double sigma = latency_sigma(plan, the_case, channel);
+    const double sigma = latency_sigma(the_case, plan.signal, asked_limits(plan, the_case, channel));
     LagDiscrimination discrimination(evidence.window, first_lag_sample(the_case, evidence.window));
     ReferenceSource reference(plan, the_case, channel, {});
     SentBlock sent(plan, the_case);

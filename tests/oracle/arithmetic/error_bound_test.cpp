@@ -218,6 +218,10 @@ TEST_CASE("error bound: rms and bias of noise stay within, and not far below", "
         REQUIRE(mean >= bound.bias_lower);
         REQUIRE(mean <= bound.bias_upper);
         REQUIRE(bound.rms <= bound.largest());
+        use.noise_like = false;
+        const ErrorBound worst = derive(chain.described, use);
+        REQUIRE(bound.worst_rms == worst.rms);
+        REQUIRE((bound.worst_bias_lower == worst.bias_lower && bound.worst_bias_upper == worst.bias_upper));
         if (!bound.is_statistical || bound.terms.empty()) continue;
         ++statistical;
         near_rms += bound.rms <= 2.0 * rms;
