@@ -1,7 +1,6 @@
 #include "runner/paper.hpp"
 
-#include <algorithm>
-
+#include "oracle/filters/channel_stages.hpp"
 #include "oracle/judge/case_judge.hpp"
 #include "runner/paper_arithmetic.hpp"
 #include "runner/paper_filter.hpp"
@@ -50,8 +49,7 @@ namespace {
 void add_filters(const Plan& plan, const std::vector<std::size_t>& selected, const std::function<bool()>& go_on,
                  Prediction& prediction) {
     const Signal& signal = plan.signal;
-    const bool differ = std::any_of(plan.filter.begin(), plan.filter.end(),
-                                    [](const FilterStage& stage) { return !stage.channels.empty(); });
+    const bool differ = channels_differ(plan.filter);
     for (int channel = 1; channel <= (differ ? signal.channels : 1) && go_on(); ++channel) {
         const FilterChain chain = chain_of_channel(plan.filter, channel);
         const auto described = describe(chain, signal.input, signal.output, signal.output_per_input).described;

@@ -4,6 +4,7 @@
 #include <cmath>
 
 #include "oracle/arithmetic/limit_cycle.hpp"
+#include "oracle/filters/channel_stages.hpp"
 #include "oracle/filters/rates.hpp"
 #include "oracle/judge/derived_limits.hpp"
 #include "runner/paper_filter.hpp"
@@ -72,9 +73,7 @@ std::vector<PredictedTerm> terms_of(const DescribedChain& described, const Error
 
 /// The channel that a case drives, when it is one of those that have this filter; else the one given.
 int channel_of(const Plan& plan, const Case& the_case, int channel) {
-    const bool has_own_filters = std::any_of(plan.filter.begin(), plan.filter.end(),
-                                             [](const FilterStage& stage) { return !stage.channels.empty(); });
-    return the_case.channel && !has_own_filters ? *the_case.channel : channel;
+    return the_case.channel && !channels_differ(plan.filter) ? *the_case.channel : channel;
 }
 
 std::vector<PredictedCaseError> case_errors(const Plan& plan, const DescribedChain& described, int channel,

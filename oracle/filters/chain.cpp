@@ -112,15 +112,6 @@ void ChainFilter::process(std::span<const double> in, std::span<double> out) {
         made += process_piece(in.subspan(done, std::min(piece_inputs_, in.size() - done)), out.subspan(made));
 }
 
-FilterChain chain_of_channel(const FilterChain& chain, int channel) {
-    FilterChain own;
-    for (const FilterStage& stage : chain) {
-        const auto& list = stage.channels;
-        if (list.empty() || std::find(list.begin(), list.end(), channel) != list.end()) own.push_back(stage);
-    }
-    return own;
-}
-
 FilterChain from_rest(FilterChain chain) {
     for (FilterStage& stage : chain) stage.initial = Initial::zeros;
     return chain;

@@ -6,6 +6,7 @@
 #include <set>
 #include <vector>
 
+#include "oracle/filters/channel_stages.hpp"
 #include "oracle/judge/latency_sigma.hpp"
 #include "oracle/judge/reference_source.hpp"
 #include "oracle/judge/sent_block.hpp"
@@ -17,15 +18,10 @@ namespace {
 std::vector<int> channels_to_look_at(const Plan& plan, const Case& the_case) {
     const FilterChain& stages = the_case.filter ? *the_case.filter : plan.filter;
     std::vector<int> found;
-    std::set<std::vector<bool>> seen;
+    std::set<std::vector<std::size_t>> seen;
     for (int channel = 1; channel <= plan.signal.channels; ++channel) {
         if (!is_driven(the_case, channel)) continue;
-        std::vector<bool> passed;
-        for (const FilterStage& stage : stages) {
-            const auto& list = stage.channels;
-            passed.push_back(list.empty() || std::find(list.begin(), list.end(), channel) != list.end());
-        }
-        if (seen.insert(passed).second) found.push_back(channel);
+        if (seen.insert(stages_of_channel(stages, channel)).second) found.push_back(channel);
     }
     return found;
 }

@@ -1,7 +1,6 @@
 #include "oracle/judge/latency_sigma.hpp"
 
 #include <algorithm>
-#include <cmath>
 
 #include "oracle/judge/units.hpp"
 
@@ -24,9 +23,7 @@ std::optional<double> allowed_rms(const Case& the_case, const Signal& signal, co
 }
 
 double latency_sigma(const Case& the_case, const Signal& signal, const DerivedLimits& derived) {
-    const SampleFormat& output = signal.output;
-    const double step = output.has_lsb() ? lsb_value(output) : std::ldexp(full_scale_value(output), -24);
-    return std::max(step, allowed_rms(the_case, signal, derived).value_or(0.0));
+    return std::max(finest_step(signal.output), allowed_rms(the_case, signal, derived).value_or(0.0));
 }
 
 }  // namespace halflsb

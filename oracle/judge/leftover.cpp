@@ -9,6 +9,7 @@
 #include "oracle/arithmetic/exact_chain.hpp"
 #include "oracle/filters/impulse_run.hpp"
 #include "oracle/filters/rates.hpp"
+#include "oracle/judge/units.hpp"
 
 namespace halflsb {
 namespace {
@@ -16,12 +17,6 @@ namespace {
 constexpr std::size_t most_samples = std::size_t{1} << 22;
 constexpr double small_rest = 1e-12;
 constexpr double no_end = std::numeric_limits<double>::infinity();
-
-/// What a flush leaves at most (the reader's flush_samples), at gain 1.
-double half_step(const Signal& signal) {
-    const double half = signal.output.has_lsb() ? lsb_value(signal.output) / 2.0 : 0x1p-25;
-    return half / std::fabs(signal.output_per_input);
-}
 
 /// sum |h[k]| over k > n for n = first, first + 1, ... until nearly nothing is left.
 std::vector<double> tails_from(std::size_t first, const FilterChain& chain) {
@@ -95,7 +90,9 @@ Leftover leftover(const DescribedChain& chain, const Plan& plan, const Case& the
     const FilterChain exact = from_rest(exact_chain(chain).stages);
     if (!is_linear(exact) || changes_rate(exact)) {
         // flush_samples() holds for these too, and says no more.
-        const double half = the_case.start == Start::flush ? half_step(plan.signal) : no_end;
+        const double half = the_case.start == Start::flush
+                                ? finest_step(plan.signal.output) / 2.0 / std::fabs(plan.signal.output_per_input)
+                                : no_end;
         return {half, half, half};
     }
     const double full_scale = full_scale_value(plan.signal.input);

@@ -7,6 +7,7 @@
 
 #include "oracle/arithmetic/plausible_changes.hpp"
 #include "oracle/arithmetic/twin.hpp"
+#include "oracle/filters/channel_stages.hpp"
 #include "oracle/judge/case_judge.hpp"
 #include "oracle/judge/derived_limits.hpp"
 
@@ -69,11 +70,7 @@ std::vector<ArithmeticChange> changes_of(const Plan& plan) {
     std::vector<ArithmeticChange> all;
     std::set<std::pair<std::size_t, std::string>> seen;
     for (int channel = 1; channel <= plan.signal.channels; ++channel) {
-        std::vector<std::size_t> passed;
-        for (std::size_t i = 0; i < plan.filter.size(); ++i) {
-            const auto& list = plan.filter[i].channels;
-            if (list.empty() || std::find(list.begin(), list.end(), channel) != list.end()) passed.push_back(i);
-        }
+        const std::vector<std::size_t> passed = stages_of_channel(plan.filter, channel);
         for (ArithmeticChange& change : plausible_changes(chain_of_channel(plan.filter, channel), plan.signal.input,
                                                           plan.signal.output, plan.signal.output_per_input)) {
             change.stage = passed[change.stage];

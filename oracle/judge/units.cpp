@@ -17,6 +17,10 @@ double worth_of(Limit::In in, const Signal& signal) {
     return 1.0;
 }
 
+double finest_step(const SampleFormat& output) {
+    return output.has_lsb() ? lsb_value(output) : std::ldexp(full_scale_value(output), -24);
+}
+
 double value_of(const Limit& limit, const Signal& signal) { return limit.number * worth_of(limit.in, signal); }
 
 std::string unit_name(Limit::In in, const Signal& signal) {

@@ -11,6 +11,8 @@ namespace halflsb {
 
 /// What one unit of `in` is worth as a value of the output. Engineering units need full_scale_unit.
 double worth_of(Limit::In in, const Signal& signal);
+/// One LSB as a value; f32 has none: the spacing of floats below full scale, 2^-24 of it, takes its place.
+double finest_step(const SampleFormat& output);
 /// The limit as a value of the output.
 double value_of(const Limit& limit, const Signal& signal);
 /// "LSB", "of full scale", or the plan's unit.

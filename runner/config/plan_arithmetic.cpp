@@ -1,6 +1,6 @@
 #include "runner/config/plan_arithmetic.hpp"
 
-#include <algorithm>
+#include "oracle/filters/channel_stages.hpp"
 
 namespace halflsb {
 
@@ -34,14 +34,8 @@ void StageTables::refuse(const Error& error, ArithmeticTable& common) {
 }
 
 std::optional<ArithmeticProblem> arithmetic_problem(const FilterChain& chain, const Signal& signal) {
-    const bool is_alike =
-        std::all_of(chain.begin(), chain.end(), [](const FilterStage& s) { return s.channels.empty(); });
-    for (int channel = 1; channel <= (is_alike ? 1 : signal.channels); ++channel) {
-        std::vector<std::size_t> passed;
-        for (std::size_t i = 0; i < chain.size(); ++i) {
-            const auto& list = chain[i].channels;
-            if (list.empty() || std::find(list.begin(), list.end(), channel) != list.end()) passed.push_back(i);
-        }
+    for (int channel = 1; channel <= (channels_differ(chain) ? signal.channels : 1); ++channel) {
+        const std::vector<std::size_t> passed = stages_of_channel(chain, channel);
         if (passed.empty()) continue;
         auto found =
             describe(chain_of_channel(chain, channel), signal.input, signal.output, signal.output_per_input).problem;

@@ -5,7 +5,9 @@
 #include <deque>
 
 #include "oracle/arithmetic/declared.hpp"
+#include "oracle/filters/channel_stages.hpp"
 #include "oracle/filters/rates.hpp"
+#include "oracle/judge/units.hpp"
 #include "runner/config/coefficient_files.hpp"
 #include "runner/config/plan_arithmetic.hpp"
 #include "runner/config/plan_words.hpp"
@@ -23,11 +25,6 @@ bool is_in_time(const Recipe& recipe, const ParameterValues& values) {
     return std::any_of(recipe.parameters.begin(), recipe.parameters.end(), [&](const Parameter& parameter) {
         return (parameter.unit == "Hz" || parameter.unit == "s") && values.has(parameter.name);
     });
-}
-
-/// Half a step of the output; of f32, half the spacing of floats below full scale.
-double half_step(const SampleFormat& output) {
-    return output.has_lsb() ? lsb_value(output) / 2.0 : std::ldexp(1.0, -25);
 }
 
 class FilterReader {
@@ -169,14 +166,12 @@ std::optional<std::int64_t> PlanFilters::flush_samples_at(double rate_hz, const 
     std::optional<std::int64_t> most = 0;
     const Outcome<FilterChain>& design = at_rate(rate_hz, signal);
     const double full_scale = full_scale_value(signal.input) * std::fabs(signal.output_per_input);
-    const bool is_alike =
-        std::all_of(chain.begin(), chain.end(), [](const FilterStage& s) { return s.channels.empty(); });
-    const int channels = is_alike ? 1 : signal.channels;
+    const int channels = channels_differ(chain) ? signal.channels : 1;
     for (int channel = 1; design && most && channel <= channels; ++channel) {
         const FilterChain own = chain_of_channel(*design, channel);
         // The board runs the rounded coefficients, whose poles may be the slower ones.
         for (const FilterChain& run : {own, declared_chain(own)}) {
-            const auto samples = flush_samples(run, full_scale, half_step(signal.output));
+            const auto samples = flush_samples(run, full_scale, finest_step(signal.output) / 2.0);
             most = samples && most ? std::optional(std::max(*most, *samples)) : std::nullopt;
         }
     }
