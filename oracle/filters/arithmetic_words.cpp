@@ -1,5 +1,5 @@
 // The table of the words of [arithmetic] and [filter.arithmetic].
-#include "oracle/filters/stage_arithmetic.hpp"
+#include "oracle/filters/arithmetic_names.hpp"
 #include "stimuli/format_names.hpp"
 
 namespace halflsb {
@@ -19,73 +19,24 @@ Parameter one_of_words(std::string_view name, std::vector<std::string_view> choi
             .optional_choice = true};
 }
 
-const std::vector<std::string_view> overflow_words{"saturate", "wrap"};
-
 }  // namespace
 
-std::string_view name_of(Overflow overflow) { return overflow == Overflow::saturate ? "saturate" : "wrap"; }
-
-std::string_view name_of(NumberKind number) { return number == NumberKind::integer ? "integer" : "float32"; }
-
-std::string_view name_of(Structure structure) {
-    switch (structure) {
-        case Structure::direct_1:
-            return "direct-1";
-        case Structure::direct_2:
-            return "direct-2";
-        case Structure::transposed_2:
-            return "transposed-2";
-        case Structure::running_sum:
-            return "running-sum";
-        case Structure::fresh_sum:
-            return "fresh-sum";
-        case Structure::difference:
-            return "difference";
-        case Structure::leak:
-            break;
-    }
-    return "leak";
-}
-
-std::string_view name_of(RoundingAt place) {
-    switch (place) {
-        case RoundingAt::sum:
-            return "sum";
-        case RoundingAt::product:
-            return "product";
-        case RoundingAt::output:
-            break;
-    }
-    return "output";
-}
-
-std::string_view name_of(Division division) {
-    switch (division) {
-        case Division::divide:
-            return "divide";
-        case Division::shift:
-            return "shift";
-        case Division::reciprocal:
-            break;
-    }
-    return "reciprocal";
-}
-
-std::string_view name_of(Summation order) { return order == Summation::newest_first ? "newest-first" : "oldest-first"; }
-
-std::string_view name_of(FeedbackCoefficients sign) {
-    return sign == FeedbackCoefficients::added ? "added" : "subtracted";
-}
+std::string_view name_of(Overflow overflow) { return name_in_words(overflow); }
+std::string_view name_of(NumberKind number) { return name_in_words(number); }
+std::string_view name_of(Structure structure) { return name_in_words(structure); }
+std::string_view name_of(RoundingAt place) { return name_in_words(place); }
+std::string_view name_of(Division division) { return name_in_words(division); }
+std::string_view name_of(Summation order) { return name_in_words(order); }
+std::string_view name_of(FeedbackCoefficients sign) { return name_in_words(sign); }
 
 const Recipe& arithmetic_recipe() {
     static const Recipe recipe{
         "arithmetic",
         "What the firmware promises of its arithmetic: [arithmetic] for every stage, [filter.arithmetic] for one.",
         {
-            one_of_words("number", {"integer", "float32"},
+            one_of_words("number", words_of<NumberKind>(),
                          "In what the stage computes; float32 when left out where its output words are f32."),
-            one_of_words("structure",
-                         {"direct-1", "direct-2", "transposed-2", "running-sum", "fresh-sum", "difference", "leak"},
+            one_of_words("structure", words_of<Structure>(),
                          "How the stage is wired; the first one of its kind of filter when left out."),
             bits("coefficient_bits", 8.0, 64.0, "Width of a stored coefficient, its sign included."),
             bits("coefficient_fraction_bits", 0.0, 62.0,
@@ -98,9 +49,9 @@ const Recipe& arithmetic_recipe() {
             bits("accumulator_bits", 8.0, 64.0, "Width of the sum of products; as wide as it takes when left out."),
             bits("accumulator_fraction_bits", 0.0, 126.0,
                  "Fraction bits of that sum; as many as the products have when left out, or as rounding_at says."),
-            one_of_words("accumulator_overflow", {"wrap", "saturate"},
+            one_of_words("accumulator_overflow", {name_of(Overflow::wrap), name_of(Overflow::saturate)},
                          "What becomes of a partial sum beyond the ends of the accumulator; it wraps when left out."),
-            one_of_words("rounding_at", {"sum", "product", "output"},
+            one_of_words("rounding_at", words_of<RoundingAt>(),
                          "Where results are shortened: each sum once (when left out), each product, or only the output "
                          "of a cascade."),
             one_of_words("rounding", rounding_names(), "Rounding of what is shortened."),
@@ -110,19 +61,19 @@ const Recipe& arithmetic_recipe() {
             bits("state_bits", 8.0, 64.0,
                  "Width of what is kept from sample to sample beside inputs; of the output words when left out."),
             bits("state_fraction_bits", 0.0, 126.0, "Its fraction bits; those of the output words when left out."),
-            one_of_words("state_overflow", overflow_words,
+            one_of_words("state_overflow", words_of<Overflow>(),
                          "What becomes of a state beyond its ends; as output_overflow when left out."),
             {.name = "output_overflow",
              .type = ParameterType::choice,
-             .choices = overflow_words,
+             .choices = words_of<Overflow>(),
              .help = "What becomes of a result beyond the ends of the output words."},
             one_of_words("stage_format", format_names(),
                          "Words between this stage and the next, at whose ends it overflows; wide when left out."),
-            one_of_words("division", {"divide", "shift", "reciprocal"},
+            one_of_words("division", words_of<Division>(),
                          "How a moving average divides; by a reciprocal of coefficient_fraction_bits."),
             one_of_words("multiply_add", {"separate", "fused"},
                          "Whether float32 rounds each product before it is added; separate when left out."),
-            one_of_words("summation", {"newest-first", "oldest-first"},
+            one_of_words("summation", words_of<Summation>(),
                          "In which order a fir or a fresh sum adds; newest-first when left out."),
         }};
     return recipe;

@@ -1,7 +1,6 @@
 #include "oracle/filters/stage_arithmetic.hpp"
 
-#include <initializer_list>
-
+#include "oracle/filters/arithmetic_names.hpp"
 #include "stimuli/format_names.hpp"
 #include "stimuli/values_check.hpp"
 
@@ -33,15 +32,10 @@ std::optional<Error> contradiction_in(const StageArithmetic& made, const Paramet
     return std::nullopt;
 }
 
-/// The value of that name in the words of a choice; what was not given stays as it is.
+/// The value that the word stands for; what was not given stays as it is.
 template <class Value>
-void take(const ParameterValues& values, std::string_view name, std::initializer_list<Value> all,
-          std::optional<Value>& target) {
-    const auto word = values.text(arithmetic_recipe(), name);
-    if (!word) return;
-    for (const Value each : all) {
-        if (name_of(each) == *word) target = each;
-    }
+void take(const ParameterValues& values, std::string_view name, std::optional<Value>& target) {
+    if (const auto word = values.text(arithmetic_recipe(), name)) target = value_from<Value>(*word);
 }
 
 void take(const ParameterValues& values, std::string_view name, std::optional<int>& target) {
@@ -66,29 +60,25 @@ Outcome<StageArithmetic> make_arithmetic(const ParameterValues& values, const St
     take(values, "coefficient_bits", made.coefficient_bits);
     if (const auto word = values.text(recipe, "coefficient_rounding"))
         made.coefficient_rounding = *rounding_from(*word);
-    take(values, "feedback_coefficients", {FeedbackCoefficients::added, FeedbackCoefficients::subtracted},
-         made.feedback_coefficients);
-    take(values, "number", {NumberKind::integer, NumberKind::float32}, made.number);
-    take(values, "structure",
-         {Structure::direct_1, Structure::direct_2, Structure::transposed_2, Structure::running_sum,
-          Structure::fresh_sum, Structure::difference, Structure::leak},
-         made.structure);
+    take(values, "feedback_coefficients", made.feedback_coefficients);
+    take(values, "number", made.number);
+    take(values, "structure", made.structure);
     take(values, "accumulator_bits", made.accumulator_bits);
     take(values, "accumulator_fraction_bits", made.accumulator_fraction_bits);
-    take(values, "accumulator_overflow", {Overflow::wrap, Overflow::saturate}, made.accumulator_overflow);
-    take(values, "rounding_at", {RoundingAt::sum, RoundingAt::product, RoundingAt::output}, made.rounding_at);
+    take(values, "accumulator_overflow", made.accumulator_overflow);
+    take(values, "rounding_at", made.rounding_at);
     take(values, "rounding", made.rounding);
     take(values, "output_rounding", made.output_rounding);
     take(values, "fraction_saving", "on", made.fraction_saving);
     take(values, "state_bits", made.state_bits);
     take(values, "state_fraction_bits", made.state_fraction_bits);
-    take(values, "state_overflow", {Overflow::wrap, Overflow::saturate}, made.state_overflow);
-    take(values, "division", {Division::divide, Division::shift, Division::reciprocal}, made.division);
+    take(values, "state_overflow", made.state_overflow);
+    take(values, "division", made.division);
     take(values, "multiply_add", "fused", made.fused_multiply_add);
-    take(values, "summation", {Summation::newest_first, Summation::oldest_first}, made.summation);
+    take(values, "summation", made.summation);
     // Asked for, not defaulted: what is left out is as the defaults have it.
     if (values.has("output_overflow")) {
-        made.output_overflow = values.text(recipe, "output_overflow") == "wrap" ? Overflow::wrap : Overflow::saturate;
+        made.output_overflow = *value_from<Overflow>(*values.text(recipe, "output_overflow"));
     }
     if (const auto word = values.text(recipe, "stage_format")) made.stage_format = sample_format(*word);
     if (auto error = contradiction_in(made, values)) return *error;
