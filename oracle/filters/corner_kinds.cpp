@@ -1,6 +1,7 @@
 // The kinds that a plan gives by a corner: one-pole, DC blocker and notch. Each is one section of a BiquadCascade.
 #include <cmath>
 
+#include "oracle/filters/band_words.hpp"
 #include "oracle/filters/corner.hpp"
 #include "oracle/filters/filter_kind.hpp"
 #include "stimuli/number_text.hpp"
@@ -13,8 +14,6 @@ namespace {
 // Below this a filter takes a thousand million samples to follow: a slip in the units, not a filter.
 constexpr double least_coefficient = 1e-9;
 constexpr double largest_pole = 1.0 - least_coefficient;
-constexpr double least_frequency_hz = 1e-9;
-constexpr double largest_frequency_hz = 1e9;
 constexpr double most_shift_bits = 29.0;  // 2^-29 is above the least coefficient, 2^-30 is not
 constexpr double least_q = 0.01;
 constexpr double largest_q = 1e6;
@@ -101,15 +100,6 @@ Outcome<FilterDesign> make_notch(const Recipe& recipe, const ParameterValues& va
                       "give a smaller q");
     }
     return std::move(stage.design);
-}
-
-Parameter frequency_parameter(std::string_view name, std::string_view help) {
-    return {.name = name,
-            .type = ParameterType::real,
-            .unit = "Hz",
-            .minimum = least_frequency_hz,
-            .maximum = largest_frequency_hz,
-            .help = help};
 }
 
 }  // namespace

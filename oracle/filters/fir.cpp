@@ -1,6 +1,5 @@
 #include "oracle/filters/fir.hpp"
 
-#include <algorithm>
 #include <cstring>
 
 namespace halflsb {
@@ -12,7 +11,6 @@ namespace {
 using Pair = double __attribute__((vector_size(16)));
 
 constexpr std::size_t tile_outputs = 16;
-constexpr std::size_t least_room_samples = 2048;
 
 // `newest` points at the sample of the first output; taps run back from there.
 void fill_tile(const std::vector<double>& taps, const double* newest, double* out) {
@@ -36,42 +34,22 @@ void fill_tile(const std::vector<double>& taps, const double* newest, double* ou
     std::memcpy(out, sums, sizeof sums);
 }
 
-double single_output(const std::vector<double>& taps, const double* newest) {
-    double sum = 0.0;
-    for (const double tap : taps) sum += tap * *newest--;
-    return sum;
-}
-
 }  // namespace
 
-FirFilter::FirFilter(const Fir& design)
-    : taps_(design.taps), line_(taps_.size() - 1 + std::max(taps_.size(), least_room_samples), 0.0) {
-    reset();
-}
+FirFilter::FirFilter(const Fir& design) : taps_(design.taps), line_(taps_.size()) {}
 
 void FirFilter::reset() { preload(0.0); }
 
-void FirFilter::preload(double value) {
-    end_ = taps_.size() - 1;
-    std::fill(line_.begin(), line_.begin() + static_cast<std::ptrdiff_t>(end_), value);
-}
+void FirFilter::preload(double value) { line_.fill(value); }
 
 void FirFilter::process(std::span<const double> in, std::span<double> out) {
-    const std::size_t past = taps_.size() - 1;
-    std::size_t done = 0;
-    while (done < in.size()) {
-        if (end_ == line_.size()) {
-            std::copy(line_.end() - static_cast<std::ptrdiff_t>(past), line_.end(), line_.begin());
-            end_ = past;
-        }
-        const std::size_t count = std::min(in.size() - done, line_.size() - end_);
-        double* const fresh = line_.data() + end_;
-        std::copy_n(in.data() + done, count, fresh);
+    for (std::size_t done = 0; done < in.size();) {
+        const std::span<const double> fresh = line_.take(in.subspan(done));
         std::size_t i = 0;
-        for (; i + tile_outputs <= count; i += tile_outputs) fill_tile(taps_, fresh + i, out.data() + done + i);
-        for (; i < count; ++i) out[done + i] = single_output(taps_, fresh + i);
-        end_ += count;
-        done += count;
+        for (; i + tile_outputs <= fresh.size(); i += tile_outputs)
+            fill_tile(taps_, fresh.data() + i, out.data() + done + i);
+        for (; i < fresh.size(); ++i) out[done + i] = newest_first_sum(taps_, fresh.data() + i);
+        done += fresh.size();
     }
 }
 

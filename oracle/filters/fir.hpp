@@ -7,6 +7,7 @@
 
 #include <vector>
 
+#include "oracle/filters/sample_line.hpp"
 #include "oracle/filters/stage_filter.hpp"
 
 namespace halflsb {
@@ -20,8 +21,7 @@ public:
 
 private:
     std::vector<double> taps_;
-    std::vector<double> line_;  ///< the past N - 1 samples and what has come since the last move
-    std::size_t end_ = 0;       ///< samples in use in line_
+    SampleLine line_;
 };
 
 }  // namespace halflsb

@@ -9,7 +9,6 @@ namespace halflsb {
 namespace {
 
 constexpr std::size_t piece_samples = 1024;
-constexpr std::size_t least_room_samples = 2048;
 
 // Four outputs, `step` inputs apart, each summed by itself from its newest sample on: while one addition waits for
 // the one before, the processor works on the others.
@@ -28,26 +27,15 @@ void four_outputs(const std::vector<double>& taps, const double* newest, std::si
     out[3] = s3;
 }
 
-double one_output(const std::vector<double>& taps, const double* newest) {
-    double sum = 0.0;
-    for (const double tap : taps) sum += tap * *newest--;
-    return sum;
-}
-
 }  // namespace
 
 FirDecimatorFilter::FirDecimatorFilter(const FirDecimator& design)
-    : taps_(design.taps),
-      factor_(static_cast<std::size_t>(design.factor)),
-      line_(taps_.size() - 1 + std::max(taps_.size(), least_room_samples), 0.0) {
-    reset();
-}
+    : taps_(design.taps), factor_(static_cast<std::size_t>(design.factor)), line_(taps_.size()) {}
 
 void FirDecimatorFilter::reset() { preload(0.0); }
 
 void FirDecimatorFilter::preload(double value) {
-    end_ = taps_.size() - 1;
-    std::fill(line_.begin(), line_.begin() + static_cast<std::ptrdiff_t>(end_), value);
+    line_.fill(value);
     until_output_ = 0;
 }
 
@@ -56,23 +44,16 @@ std::size_t FirDecimatorFilter::outputs_for(std::size_t inputs) const {
 }
 
 void FirDecimatorFilter::process(std::span<const double> in, std::span<double> out) {
-    const std::size_t past = taps_.size() - 1;
     std::size_t made = 0;
-    for (std::size_t done = 0; done < in.size();) {
-        if (end_ == line_.size()) {
-            std::copy(line_.end() - static_cast<std::ptrdiff_t>(past), line_.end(), line_.begin());
-            end_ = past;
-        }
-        const std::size_t count = std::min(in.size() - done, line_.size() - end_);
-        double* const fresh = line_.data() + end_;
-        std::copy_n(in.data() + done, count, fresh);
+    while (!in.empty()) {
+        const std::span<const double> fresh = line_.take(in);
+        const std::size_t count = fresh.size();
         std::size_t at = until_output_;
         for (; at + 3 * factor_ < count; at += 4 * factor_, made += 4)
-            four_outputs(taps_, fresh + at, factor_, out.data() + made);
-        for (; at < count; at += factor_) out[made++] = one_output(taps_, fresh + at);
+            four_outputs(taps_, fresh.data() + at, factor_, out.data() + made);
+        for (; at < count; at += factor_) out[made++] = newest_first_sum(taps_, fresh.data() + at);
         until_output_ = at - count;
-        end_ += count;
-        done += count;
+        in = in.subspan(count);
     }
 }
 

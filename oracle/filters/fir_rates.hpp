@@ -23,8 +23,7 @@ public:
 private:
     std::vector<double> taps_;
     std::size_t factor_;
-    std::vector<double> line_;      ///< the past N - 1 samples and what has come since the last move
-    std::size_t end_ = 0;           ///< samples in use in line_
+    SampleLine line_;
     std::size_t until_output_ = 0;  ///< inputs that come before the one that gives the next output
 };
 

@@ -1,10 +1,10 @@
 // Sums over an impulse response: of its squares, and of its two signs.
+#include <array>
 #include <cmath>
-#include <cstdint>
 #include <optional>
 
 #include "oracle/filters/exact_sums.hpp"
-#include "oracle/filters/impulse_run.hpp"
+#include "oracle/filters/impulse_sums.hpp"
 #include "oracle/filters/memory.hpp"
 #include "oracle/filters/node_path.hpp"
 
@@ -12,8 +12,6 @@ namespace halflsb {
 
 namespace {
 
-constexpr std::int64_t most_samples = std::int64_t{1} << 24;
-constexpr auto piece_samples = static_cast<std::int64_t>(ImpulseRun::piece_samples);
 constexpr double unit_share = 1e-15;  // of the sum of squares, left to what is not computed
 
 // With n+ = b0 + b1 + b2, n- = b0 - b1 + b2, p+ = 1 + a1 + a2, p- = 1 - a1 + a2:
@@ -55,25 +53,17 @@ std::optional<double> closed_noise(const FilterChain& chain) {
     return std::nullopt;
 }
 
-// What a sum that shrinks by `quarter_decay` in each quarter of most_samples still has to come.
-double rest_of_series(double last_quarter, double quarter_decay) {
-    return quarter_decay < 1.0 ? last_quarter * quarter_decay / (1.0 - quarter_decay) : no_limit;
-}
-
-double quarter_decay(const FilterChain& chain, double power) {
-    return std::exp(0.25 * power * static_cast<double>(most_samples) * std::log(largest_pole_radius(chain)));
-}
-
-double sum_of_squares(std::span<const double> piece) {
+std::array<double, 1> sum_of_squares(std::span<const double> piece) {
     double sum = 0.0;
     for (const double h : piece) sum += h * h;
-    return sum;
+    return {sum};
 }
 
-SignedSums sums_of_signs(std::span<const double> piece) {
-    SignedSums sums;
-    for (const double h : piece) (h > 0.0 ? sums.positive : sums.negative) += h;
-    return sums;
+/// Of what is above 0, and of what is below.
+std::array<double, 2> sums_of_signs(std::span<const double> piece) {
+    double positive = 0.0, negative = 0.0;
+    for (const double h : piece) (h > 0.0 ? positive : negative) += h;
+    return {positive, negative};
 }
 
 }  // namespace
@@ -82,37 +72,20 @@ double dc_gain(const FilterChain& chain) { return response_at(chain, 0.0).real()
 
 double noise_power_gain(const FilterChain& chain) {
     if (const auto closed = closed_noise(chain)) return *closed;
-    ImpulseRun run(chain);
-    double sum = 0.0, last_quarter = 0.0;
-    for (std::int64_t samples = 0; samples < most_samples; samples += piece_samples) {
-        const double part = sum_of_squares(run.next());
-        sum += part;
-        if (samples >= most_samples - most_samples / 4) last_quarter += part;
-        const double rest = run.rest();  // of sum |h|, whose square is the more
-        if (rest * rest <= unit_share * sum) return sum;
-    }
-    return sum + rest_of_series(last_quarter, quarter_decay(chain, 2.0));
+    const auto is_done = [](const std::array<double, 1>& sum, double rest) {
+        return rest * rest <= unit_share * sum[0];  // rest is of sum |h|, whose square is the more
+    };
+    return sums_over_impulse<1>(chain, 2.0, sum_of_squares, is_done)[0];
 }
 
 double l2_norm(const FilterChain& chain) { return std::sqrt(noise_power_gain(chain)); }
 
 SignedSums signed_sums(const FilterChain& chain, double tail) {
-    ImpulseRun run(chain);
-    SignedSums sum, last_quarter;
-    for (std::int64_t samples = 0; samples < most_samples; samples += piece_samples) {
-        const SignedSums part = sums_of_signs(run.next());
-        sum.positive += part.positive;
-        sum.negative += part.negative;
-        if (samples >= most_samples - most_samples / 4) {
-            last_quarter.positive += part.positive;
-            last_quarter.negative += part.negative;
-        }
-        if (run.rest() <= tail * (sum.positive - sum.negative)) return sum;
-    }
-    const double decay = quarter_decay(chain, 1.0);
-    sum.positive += rest_of_series(last_quarter.positive, decay);
-    sum.negative += rest_of_series(last_quarter.negative, decay);
-    return sum;
+    const auto is_done = [tail](const std::array<double, 2>& sums, double rest) {
+        return rest <= tail * (sums[0] - sums[1]);
+    };
+    const auto sums = sums_over_impulse<2>(chain, 1.0, sums_of_signs, is_done);
+    return {sums[0], sums[1]};
 }
 
 }  // namespace halflsb

@@ -1,10 +1,11 @@
 // What a filter does to one sample, how large its output can get, and how long it remembers.
 #include <algorithm>
+#include <array>
 #include <cmath>
 #include <cstdint>
 
 #include "oracle/filters/filter.hpp"
-#include "oracle/filters/impulse_run.hpp"
+#include "oracle/filters/impulse_sums.hpp"
 #include "oracle/filters/multirate_norms.hpp"
 #include "oracle/filters/rates.hpp"
 
@@ -12,7 +13,7 @@ namespace halflsb {
 
 namespace {
 
-constexpr std::int64_t most_samples = std::int64_t{1} << 24;
+constexpr std::int64_t most_samples = most_impulse_samples;
 constexpr auto piece_samples = static_cast<std::int64_t>(ImpulseRun::piece_samples);
 
 // Rounding in a tail, and the part of the bound that is not computed, are below this of the limit.
@@ -52,17 +53,9 @@ std::optional<std::int64_t> flush_of_steady_rate(const FilterChain& chain, doubl
 }
 
 double l1_of_steady_rate(const FilterChain& chain, double tail) {
-    ImpulseRun run(chain);
-    double sum = 0.0, last_quarter = 0.0;
-    for (std::int64_t samples = 0; samples < most_samples; samples += piece_samples) {
-        const double part = sum_of_sizes(run.next());
-        sum += part;
-        if (samples >= most_samples - most_samples / 4) last_quarter += part;
-        if (run.rest() <= tail * sum) return sum;
-    }
-    // The slowest pole alone is left: each further quarter is a fixed fraction of the one before.
-    const double decay = std::exp(0.25 * static_cast<double>(most_samples) * std::log(largest_pole_radius(chain)));
-    return decay < 1.0 ? sum + last_quarter * decay / (1.0 - decay) : no_limit;
+    const auto of_piece = [](std::span<const double> piece) { return std::array<double, 1>{sum_of_sizes(piece)}; };
+    const auto is_done = [tail](const std::array<double, 1>& sum, double rest) { return rest <= tail * sum[0]; };
+    return sums_over_impulse<1>(chain, 1.0, of_piece, is_done)[0];
 }
 
 /// A chain with a median in it: what stands before the first one, and what behind.
