@@ -2,8 +2,8 @@
 
 #include <algorithm>
 #include <cmath>
-#include <initializer_list>
 
+#include "oracle/arithmetic/named_coefficients.hpp"
 #include "oracle/arithmetic/node_impulse.hpp"
 
 namespace halflsb {
@@ -73,31 +73,11 @@ void add_needs(const std::vector<double>& h, double lowest_in, double highest_in
     if (node.bits_needed) node.integer_bits_needed = *node.bits_needed - 1 - node.fraction_bits;
 }
 
-/// With the sign in which they are stored.
-std::vector<double> coefficients_of(const DescribedStage& stage) {
-    const FilterDesign& design = stage.stage.design;
-    if (const auto* fir = std::get_if<Fir>(&design)) return fir->taps;
-    if (const auto* fir = std::get_if<FirDecimator>(&design)) return fir->taps;
-    if (const auto* fir = std::get_if<FirInterpolator>(&design)) return fir->taps;
-    const double sign = stage.feedback_coefficients == FeedbackCoefficients::added ? -1.0 : 1.0;
-    if (const auto* comb = std::get_if<Comb>(&design)) return {comb->direct, comb->forward, sign * comb->feedback};
-    std::vector<double> all;
-    if (const auto* cascade = std::get_if<BiquadCascade>(&design)) {
-        if (stage.stage.kind == "one-pole") return {cascade->sections.front().b0};
-        for (const BiquadSection& s : cascade->sections)
-            all.insert(all.end(), {s.b0, s.b1, s.b2, sign * s.a1, sign * s.a2});
-    } else if (const auto* recursion = std::get_if<Recursion>(&design)) {
-        all = recursion->b;
-        for (std::size_t k = 1; k < recursion->a.size(); ++k) all.push_back(sign * recursion->a[k]);
-    }
-    return all;
-}
-
 /// That two's complement takes for the largest of them.
 int bits_of_coefficients(const DescribedStage& stage) {
     int needed = 1;
-    for (const double coefficient : coefficients_of(stage)) {
-        const std::int64_t stored = stored_coefficient(stage, coefficient);
+    for (const NamedCoefficient& coefficient : named_coefficients(stage)) {
+        const std::int64_t stored = stored_coefficient(stage, coefficient.value);
         int bits = 1;
         while (bits < 64 && (stored >= 0 ? stored >> (bits - 1) : (-stored - 1) >> (bits - 1)) != 0) ++bits;
         needed = std::max(needed, bits);
@@ -141,7 +121,7 @@ std::vector<PredictedCoefficients> predict_coefficients(const DescribedChain& de
     for (std::size_t i = 0; i < described.stages.size(); ++i) {
         const DescribedStage& stage = described.stages[i];
         if (stage.number != NumberKind::integer || !stage.stage.coefficient_fraction_bits) continue;
-        if (coefficients_of(stage).empty()) continue;
+        if (named_coefficients(stage).empty()) continue;
         all.push_back({i + 1, stage.coefficient_fraction_bits, bits_of_coefficients(stage),
                        stage.stage.arithmetic.coefficient_bits});
     }
