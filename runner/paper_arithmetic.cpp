@@ -54,19 +54,11 @@ PredictedError error_of(const ErrorBound& bound, const BoundUse& use, double wor
             bound.bias_upper / worth, bound.is_statistical, why(bound, use)};
 }
 
-std::vector<PredictedTerm> terms_of(const DescribedChain& described, const ErrorBound& bound, double worth) {
-    const std::vector<RoundingPoint> points = rounding_points(described, exact_chain(described));
+std::vector<PredictedTerm> terms_of(const ErrorBound& bound, double worth) {
     std::vector<PredictedTerm> terms;
     for (const BoundTerm& term : bound.terms) {
-        PredictedTerm told{term.name,       term.count,   term.step / worth,  std::nullopt,       std::nullopt, term.l1,
-                           term.noise_gain, term.dc_gain, term.lower / worth, term.upper / worth, term.formula};
-        const auto same = std::find_if(points.begin(), points.end(),
-                                       [&](const RoundingPoint& point) { return point.name == term.name; });
-        if (same != points.end()) {
-            told.lowest = same->error.lowest / same->step;
-            told.highest = same->error.highest / same->step;
-        }
-        terms.push_back(std::move(told));
+        terms.push_back({term.name, term.count, term.step / worth, term.lowest, term.highest, term.l1, term.noise_gain,
+                         term.dc_gain, term.lower / worth, term.upper / worth, term.formula});
     }
     return terms;
 }
@@ -155,7 +147,7 @@ PredictedArithmetic predict_arithmetic(const Plan& plan, const DescribedChain& d
     const ErrorBound bound = derive(described, use);
     told.error = error_of(bound, use, worth);
     told.reference_error = bound.reference_error / worth;
-    told.terms = terms_of(described, bound, worth);
+    told.terms = terms_of(bound, worth);
     const bool rounding_is_open = std::any_of(described.stages.begin(), described.stages.end(),
                                               [](const DescribedStage& stage) { return !stage.rounding_is_said; });
     if (rounding_is_open) {

@@ -149,7 +149,11 @@ ErrorBound derive(const DescribedChain& chain, const BoundUse& use) {
     Budget budget(use, bound);
     const Port& in = chain.stages.front().in;
     const double largest_input = use.largest_input > 0.0 ? use.largest_input : largest_value(in);
-    for (const RoundingPoint& point : rounding_points(chain, exact)) budget.add(point, path_of(point, exact.stages));
+    for (const RoundingPoint& point : rounding_points(chain, exact)) {
+        budget.add(point, path_of(point, exact.stages));
+        bound.terms.back().lowest = point.error.lowest / point.step;
+        bound.terms.back().highest = point.error.highest / point.step;
+    }
     for (const RoundingPoint& point : float_points(chain, exact, {use.samples, largest_input})) {
         budget.add(point, path_of(point, exact.stages));
     }

@@ -9,6 +9,7 @@
 #pragma once
 
 #include <cstdint>
+#include <optional>
 #include <string>
 #include <vector>
 
@@ -30,6 +31,7 @@ struct BoundTerm {
     double step = 1.0;                                 ///< where it shortens, as a value
     double parts = 1.0;                                ///< remainders are multiples of step / parts
     int count = 1;                                     ///< of errors a sample
+    std::optional<double> lowest, highest;             ///< of the error there, in steps; none in a stage of float32
     double l1 = 1.0, noise_gain = 1.0, dc_gain = 1.0;  ///< of its path: sum |h|, sum h^2, sum h
     double lower = 0.0, upper = 0.0;                   ///< at the output, as values
     bool is_statistical = false;  ///< the stimulus is noise that stands 6 bits above what is dropped here

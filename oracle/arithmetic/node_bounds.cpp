@@ -76,11 +76,4 @@ double NodeBounds::gain_to_sum(const ChainElement& element) const { return l1_no
 
 double NodeBounds::gain_to_state(const ChainElement& element) const { return l1_norm(cut_at_state(element)); }
 
-bool NodeBounds::errs_before(const ChainElement& element) const {
-    for (const RoundingPoint& point : points_) {
-        if (is_before(point, element)) return true;
-    }
-    return false;
-}
-
 }  // namespace halflsb

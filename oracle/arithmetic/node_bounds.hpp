@@ -17,8 +17,6 @@ public:
     /// Sum |h| from the chain's input.
     double gain_to_sum(const ChainElement& element) const;
     double gain_to_state(const ChainElement& element) const;
-    /// Errors made before the element come through it.
-    bool errs_before(const ChainElement& element) const;
     const ExactChain& exact() const { return exact_; }
     const std::vector<RoundingPoint>& points() const { return points_; }
 

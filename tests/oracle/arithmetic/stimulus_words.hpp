@@ -4,8 +4,8 @@
 #include <vector>
 
 #include "oracle/arithmetic/exact_chain.hpp"
-#include "oracle/arithmetic/port_values.hpp"
 #include "oracle/arithmetic/twin.hpp"
+#include "tests/oracle/arithmetic/port_values.hpp"
 #include "tests/oracle/support.hpp"
 
 namespace halflsb::testing {
