@@ -1,65 +1,62 @@
 #include "oracle/arithmetic/declared.hpp"
 
 #include <algorithm>
-#include <vector>
+#include <limits>
 
-#include "oracle/arithmetic/word_ends.hpp"
+#include "oracle/arithmetic/element_filter.hpp"
 #include "oracle/filters/coefficients.hpp"
 
 namespace halflsb {
 
 namespace {
 
-// Pieces that stay in the first-level cache while they pass the stages.
+// Pieces that stay in the first-level cache while they pass the elements.
 constexpr std::size_t piece_samples = 1024;
 
-/// Stages up to one whose words have ends, or all that are left.
-struct Stretch {
-    std::unique_ptr<Filter> filter;
-    std::optional<WordEnds> ends;  ///< none behind the last, whose ends are the output's
-};
-
+/// Element by element, as the rails are watched.
 class DeclaredFilter final : public Filter {
 public:
-    DeclaredFilter(const FilterChain& design, const SampleFormat& output, double gain)
-        : gain_(gain), ends_(output, design.empty() ? Overflow::saturate : design.back().arithmetic.output_overflow) {
-        const FilterChain declared = declared_chain(design);
-        FilterChain stages;
-        for (std::size_t i = 0; i < declared.size(); ++i) {
-            stages.push_back(declared[i]);
-            const StageArithmetic& arithmetic = declared[i].arithmetic;
-            if (!arithmetic.stage_format || i + 1 == declared.size()) continue;
-            stretches_.push_back({make_filter(stages), WordEnds(*arithmetic.stage_format, arithmetic.output_overflow)});
-            stages.clear();
-        }
-        stretches_.push_back({make_filter(stages), std::nullopt});
+    DeclaredFilter(const DescribedChain& chain, double gain) : gain_(gain) {
+        const ExactChain exact = exact_chain(chain);
+        for (const ChainElement& element : chain_elements(chain, exact)) elements_.emplace_back(element);
+        if (chain.stages.back().out.is_float) largest_ = static_cast<double>(std::numeric_limits<float>::max());
+    }
+
+    std::size_t outputs_for(std::size_t inputs) const override {
+        for (const ElementFilter& element : elements_) inputs = element.outputs_for(inputs);
+        return inputs;
     }
 
     void reset() override {
-        for (const Stretch& stretch : stretches_) stretch.filter->reset();
+        for (ElementFilter& element : elements_) element.reset();
     }
 
     void process(std::span<const double> in, std::span<double> out) override {
         for (std::size_t done = 0; done < in.size(); done += piece_samples) {
-            const std::size_t count = std::min(piece_samples, in.size() - done);
-            process_piece(in.subspan(done, count), out.subspan(done, count));
+            const auto piece = in.subspan(done, std::min(piece_samples, in.size() - done));
+            const std::size_t count = outputs_for(piece.size());
+            process_piece(piece, out.first(count));
+            out = out.subspan(count);
         }
     }
 
 private:
-    void process_piece(std::span<const double> from, std::span<double> to) {
-        for (const Stretch& stretch : stretches_) {
-            stretch.filter->process(from, to);
-            if (stretch.ends) stretch.ends->apply(to);
-            from = to;
+    void process_piece(std::span<const double> in, std::span<double> out) {
+        from_.assign(in.begin(), in.end());
+        for (ElementFilter& element : elements_) {
+            for (auto* series : {&sums_, &held_, &to_}) series->resize(element.outputs_for(from_.size()));
+            element.process(from_, sums_, held_, to_);
+            from_.swap(to_);
         }
-        for (double& value : to) value *= gain_;
-        ends_.apply(to);
+        for (std::size_t n = 0; n < out.size(); ++n) {
+            // NaN compares false with both ends and stays.
+            out[n] = std::clamp(from_[n] * gain_, -largest_, largest_);
+        }
     }
 
-    std::vector<Stretch> stretches_;
-    double gain_;
-    WordEnds ends_;
+    std::vector<ElementFilter> elements_;
+    double gain_, largest_ = std::numeric_limits<double>::infinity();
+    std::vector<double> from_, to_, sums_, held_;
 };
 
 }  // namespace
@@ -71,8 +68,8 @@ FilterChain declared_chain(const FilterChain& design) {
     return declared;
 }
 
-std::unique_ptr<Filter> make_declared_filter(const FilterChain& design, const SampleFormat& output, double gain) {
-    return std::make_unique<DeclaredFilter>(design, output, gain);
+std::unique_ptr<Filter> make_declared_filter(const DescribedChain& chain, double gain) {
+    return std::make_unique<DeclaredFilter>(chain, gain);
 }
 
 }  // namespace halflsb

@@ -11,7 +11,6 @@
 #include <memory>
 
 #include "oracle/arithmetic/described.hpp"
-#include "stimuli/sample_format.hpp"
 
 namespace halflsb {
 
@@ -19,15 +18,9 @@ namespace halflsb {
 /// 2^-coefficient_fraction_bits; stages that declare none are unchanged.
 FilterChain declared_chain(const FilterChain& design);
 
-/// A filter of the declared chain of one channel (chain_of_channel). A stage_format is in values of the chain's
-/// input; after the last stage values are scaled by `gain` (output_per_input of the plan, 1 when there is none),
-/// then held within lowest_value .. highest_value of `output`, or wrapped into -full scale .. full scale, by the
-/// last stage's output_overflow (a chain without stages saturates). f32 saturates at its largest numbers.
-/// No state is clipped: nothing is known of the words of states here.
-std::unique_ptr<Filter> make_declared_filter(const FilterChain& design, const SampleFormat& output, double gain);
-
-/// Of a whole description, whose words stand in it. Values are scaled by `gain` (output_per_input) behind the last
-/// words. f32 saturates at its largest numbers.
+/// Of one channel's chain. Values are held within the ends of each stage's words, or wrapped, as they are described,
+/// and scaled by `gain` (output_per_input of the plan, 1 when there is none) behind the last ones. f32 saturates at its
+/// largest numbers.
 std::unique_ptr<Filter> make_declared_filter(const DescribedChain& chain, double gain);
 
 }  // namespace halflsb

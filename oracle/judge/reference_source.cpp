@@ -39,8 +39,8 @@ ReferenceSource::ReferenceSource(const Plan& plan, const Case& the_case, int cha
     : signal_(plan.signal) {
     const FilterChain chain = chain_of(plan, the_case, channel);
     const auto described = described_channel(plan, the_case, channel);
-    declared_filter_ = described ? make_declared_filter(*described, plan.signal.output_per_input)
-                                 : make_declared_filter(chain, plan.signal.output, plan.signal.output_per_input);
+    // The reader refuses what cannot be described; the design stands in so that nothing falls.
+    declared_filter_ = described ? make_declared_filter(*described, plan.signal.output_per_input) : make_filter(chain);
     if (wanted.design) design_filter_ = make_filter(chain);
     if (wanted.twin && described) twin_ = make_twin(*described);
     if (wanted.rails && described) rails_.emplace(*described);

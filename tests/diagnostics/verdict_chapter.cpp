@@ -9,6 +9,7 @@
 #include "oracle/arithmetic/declared.hpp"
 #include "oracle/judge/admission.hpp"
 #include "oracle/judge/case_judge.hpp"
+#include "oracle/judge/derived_limits.hpp"
 #include "runner/config/plan_file.hpp"
 #include "runner/report/rule_report.hpp"
 #include "runner/report/terminal_report.hpp"
@@ -57,8 +58,7 @@ std::vector<Code> right_response(const Plan& plan) {
         if (plan.filter_is_unknown) {
             out = in;
         } else {
-            make_declared_filter(chain_of(plan, the_case, static_cast<int>(c) + 1), plan.signal.output, 1.0)
-                ->process(in, out);
+            make_declared_filter(*described_channel(plan, the_case, static_cast<int>(c) + 1), 1.0)->process(in, out);
         }
         for (std::size_t n = 0; n < length; ++n)
             all[n * channels + c] = code_of(plan.signal.output, out[n], Rounding::half_up);

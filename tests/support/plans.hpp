@@ -6,8 +6,8 @@
 #include <utility>
 #include <vector>
 
-#include "oracle/arithmetic/declared.hpp"
 #include "oracle/judge/plan.hpp"
+#include "tests/support/declared.hpp"
 
 namespace halflsb::test {
 
@@ -67,8 +67,8 @@ inline std::vector<Code> right_response(const Plan& plan, const Case& the_case) 
     for (std::size_t c = 0; c < channels; ++c) {
         for (std::size_t n = 0; n < length; ++n) one[n] = codes[n * channels + c];
         values_of(plan.signal.input, one, in);
-        make_declared_filter(chain_of(plan, the_case, static_cast<int>(c) + 1), plan.signal.output,
-                             plan.signal.output_per_input)
+        declared_filter(chain_of(plan, the_case, static_cast<int>(c) + 1), plan.signal.input, plan.signal.output,
+                        plan.signal.output_per_input)
             ->process(in, out);
         for (std::size_t n = 0; n < length; ++n)
             codes[n * channels + c] = code_of(plan.signal.output, out[n], Rounding::half_up);

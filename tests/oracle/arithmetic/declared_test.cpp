@@ -2,12 +2,19 @@
 
 #include <limits>
 
-#include "oracle/arithmetic/word_ends.hpp"
 #include "oracle/filters/coefficients.hpp"
 #include "tests/oracle/support.hpp"
+#include "tests/support/declared.hpp"
 
 using namespace halflsb;
 using namespace halflsb::testing;
+
+namespace {
+std::unique_ptr<Filter> declared_of(const FilterChain& design, const SampleFormat& output, double gain) {
+    const bool is_scaled = gain == 32768.0;
+    return test::declared_filter(design, is_scaled ? *sample_format("q15") : output, output, gain);
+}
+}  // namespace
 
 TEST_CASE("declared: coefficients round half away from zero to multiples of 2^-bits", "[arithmetic]") {
     // Ties of 3 fraction bits are odd multiples of 1/16.
@@ -49,7 +56,7 @@ TEST_CASE("declared: each stage by its own bits, a moving average never", "[arit
 
 TEST_CASE("declared: the output saturates at both rails and nowhere before", "[arithmetic]") {
     const auto q15 = *sample_format("q15");
-    const auto filter = make_declared_filter({}, q15, 1.0);
+    const auto filter = declared_of({}, q15, 1.0);
     const double lsb = 0x1p-15, top = 1.0 - lsb;
     const std::vector<double> in{
         -1.0, -1.0 + lsb / 4, std::nextafter(-1.0, -2.0), -7.0, top, top - lsb / 4, std::nextafter(top, 2.0), 1.0, 7.0,
@@ -59,23 +66,23 @@ TEST_CASE("declared: the output saturates at both rails and nowhere before", "[a
 }
 
 TEST_CASE("declared: integer formats clamp at their codes, f32 only at the largest float", "[arithmetic]") {
-    const auto i16 = make_declared_filter({}, *sample_format("i16"), 1.0);
+    const auto i16 = declared_of({}, *sample_format("i16"), 1.0);
     CHECK(run(*i16, std::vector<double>{-40000, -32768, 32767, 32767.4, 40000}) ==
           std::vector<double>{-32768, -32768, 32767, 32767, 32767});
-    const auto f32 = make_declared_filter({}, *sample_format("f32"), 1.0);
+    const auto f32 = declared_of({}, *sample_format("f32"), 1.0);
     const double most = static_cast<double>(std::numeric_limits<float>::max());
     CHECK(run(*f32, std::vector<double>{-1e300, -5.0, 5.0, 1e300}) == std::vector<double>{-most, -5.0, 5.0, most});
 }
 
 TEST_CASE("declared: the gain comes before the rails", "[arithmetic]") {
-    const auto filter = make_declared_filter({}, *sample_format("i16"), 32768.0);
+    const auto filter = declared_of({}, *sample_format("i16"), 32768.0);
     CHECK(run(*filter, std::vector<double>{-1.0, 0.25, 1.0}) == std::vector<double>{-32768.0, 8192.0, 32767.0});
 }
 
 TEST_CASE("declared: saturation is of the output only, the state runs on", "[arithmetic]") {
-    // Gain 4 with feedback: the clipped output must not enter the recursion.
-    const FilterChain chain{stage(BiquadCascade{{{1.0, 0.0, 0.0, -0.75, 0.0}}})};
-    const auto filter = make_declared_filter(chain, *sample_format("q15"), 1.0);
+    // Gain 3.2 with feedback of second order: the clipped output must not enter the recursion.
+    const FilterChain chain{stage(BiquadCascade{{{1.0, 0.0, 0.0, -0.75, 0.0625}}})};
+    const auto filter = declared_of(chain, *sample_format("q15"), 1.0);
     std::vector<double> in(40, 0.0);
     for (std::size_t n = 0; n < 10; ++n) in[n] = 0.9;
     const auto clipped = run(*filter, in), ideal = run(chain, in);
@@ -83,7 +90,7 @@ TEST_CASE("declared: saturation is of the output only, the state runs on", "[ari
 }
 
 TEST_CASE("declared: NaN passes the rails", "[arithmetic]") {
-    const auto filter = make_declared_filter({}, *sample_format("q15"), 1.0);
+    const auto filter = declared_of({}, *sample_format("q15"), 1.0);
     CHECK(std::isnan(run(*filter, std::vector<double>{std::numeric_limits<double>::quiet_NaN()})[0]));
 }
 
@@ -91,7 +98,7 @@ TEST_CASE("declared: reset, splits and in-place runs as every filter", "[arithme
     const FilterChain chain{stage(Fir{noise(30, 61)}, 4), stage(MovingAverage{7}),
                             stage(BiquadCascade{{cookbook(Shape::low_pass, 0.1, 2.0)}}, 12)};
     const auto in = noise(3001, 62);
-    const auto filter = make_declared_filter(chain, *sample_format("q15"), 0.5);
+    const auto filter = declared_of(chain, *sample_format("q15"), 0.5);
     const auto whole = run(*filter, in);
     for (const Split split : every_split) {
         filter->reset();
@@ -113,14 +120,13 @@ FilterStage with_words(FilterStage stage, const char* format, Overflow overflow 
     return stage;
 }
 
-std::vector<double> through(const char* format, Overflow overflow, std::vector<double> values) {
-    WordEnds(*sample_format(format), overflow).apply(values);
-    return values;
+std::vector<double> through(const char* format, Overflow overflow, const std::vector<double>& values) {
+    return run(*declared_of({with_words(stage(Fir{{1.0}}), nullptr, overflow)}, *sample_format(format), 1.0), values);
 }
 
 }  // namespace
 
-TEST_CASE("word ends: wrapping comes in again at the other end, both sides of each end", "[arithmetic]") {
+TEST_CASE("declared: wrapping comes in again at the other end, both sides of each end", "[arithmetic]") {
     const double lsb = 0x1p-15, top = 1.0 - lsb, below = std::nextafter(1.0, 0.0);
     CHECK(through("q15", Overflow::wrap, {-1.0, top, below, 1.0, 1.0 + lsb, -1.0 - lsb, 2.5, 3.0, -3.0, 1e6 + 0.25}) ==
           std::vector<double>{-1.0, top, below, -1.0, -1.0 + lsb, 1.0 - lsb, 0.5, -1.0, -1.0, 0.25});
@@ -140,7 +146,7 @@ TEST_CASE("declared: a stage overflows on its way to the next", "[arithmetic]") 
     const std::vector<double> in{0.1, 0.5, -0.5, 0.3};
     const double top = 1.0 - 0x1p-15;
     const auto declared = [&](const FilterChain& chain) {
-        return run(*make_declared_filter(chain, *sample_format("q15"), 1.0), in);
+        return run(*declared_of(chain, *sample_format("q15"), 1.0), in);
     };
     CHECK(declared({loud, quiet}) == in);  // wide enough for anything
     CHECK(declared({with_words(loud, "q15"), quiet}) == std::vector<double>{0.1, top / 4.0, -0.25, top / 4.0});
@@ -155,7 +161,7 @@ TEST_CASE("declared: the last stage's words are those of the output", "[arithmet
     const FilterStage loud = stage(Fir{{4.0}});
     const std::vector<double> in{0.1, 0.5};
     const auto declared = [&](const FilterStage& last, const char* output, double gain) {
-        return run(*make_declared_filter({last}, *sample_format(output), gain), in);
+        return run(*declared_of({last}, *sample_format(output), gain), in);
     };
     CHECK(declared(with_words(loud, "q15", Overflow::wrap), "i16", 32768.0) ==
           std::vector<double>{0.1 * 4.0 * 32768.0, -32768.0 + 32768.0});
@@ -164,11 +170,11 @@ TEST_CASE("declared: the last stage's words are those of the output", "[arithmet
 }
 
 TEST_CASE("declared: a stage's state runs on behind its clipped output", "[arithmetic]") {
-    const FilterStage integrator = stage(BiquadCascade{{{1.0, 0.0, 0.0, -0.75, 0.0}}});
+    const FilterStage integrator = stage(BiquadCascade{{{1.0, 0.0, 0.0, -0.75, 0.0625}}});
     const FilterChain chain{with_words(integrator, "q15"), stage(Fir{{0.5}})};
     std::vector<double> in(40, 0.0);
     for (std::size_t n = 0; n < 10; ++n) in[n] = 0.9;
-    const auto ideal = run({integrator}, in), got = run(*make_declared_filter(chain, *sample_format("q15"), 1.0), in);
+    const auto ideal = run({integrator}, in), got = run(*declared_of(chain, *sample_format("q15"), 1.0), in);
     for (std::size_t n = 0; n < in.size(); ++n) REQUIRE(got[n] == 0.5 * std::min(ideal[n], 1.0 - 0x1p-15));
 }
 
@@ -177,11 +183,11 @@ TEST_CASE("declared: stages with ends run in any blocks, in place, and after res
                             with_words(stage(Comb{37, 1.0, 0.5, -0.6}, 5), "q15", Overflow::wrap),
                             with_words(stage(BiquadCascade{{cookbook(Shape::low_pass, 0.1, 2.0)}}, 12), "q15")};
     auto in = noise(3001, 62);
-    const auto filter = make_declared_filter(chain, *sample_format("q15"), 0.5);
+    const auto filter = declared_of(chain, *sample_format("q15"), 0.5);
     const auto whole = run(*filter, in);
     FilterChain wide = chain;
     for (FilterStage& each : wide) each.arithmetic.stage_format.reset();
-    CHECK_FALSE(same_bits(whole, run(*make_declared_filter(wide, *sample_format("q15"), 0.5), in)));
+    CHECK_FALSE(same_bits(whole, run(*declared_of(wide, *sample_format("q15"), 0.5), in)));
     for (const Split split : every_split) {
         filter->reset();
         auto both = in;
@@ -201,7 +207,7 @@ TEST_CASE("declared: each channel by its own chain", "[arithmetic]") {
     chain[1].channels = {2};
     const std::vector<double> in{0.75, 0.25};  // every sum below is exact
     const auto of = [&](int channel) {
-        return run(*make_declared_filter(chain_of_channel(chain, channel), *sample_format("q15"), 1.0), in);
+        return run(*declared_of(chain_of_channel(chain, channel), *sample_format("q15"), 1.0), in);
     };
     CHECK(of(1) == std::vector<double>{0.1875, 0.25});
     CHECK(of(2) == std::vector<double>{0.046875, 0.0625});
