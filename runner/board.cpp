@@ -32,11 +32,7 @@ double drain_seconds(const Board& board, const Rig& rig) {
     // Credit may be more blocks where they are smaller than they could be.
     const std::int64_t in_flight = std::min<std::int64_t>(
         std::int64_t{greeting.credit_blocks} * greeting.max_block_samples, most_blocks_in_flight * block);
-    const auto width = [](const SampleFormat& format, int channels) {
-        return format.word_bytes() * static_cast<std::size_t>(channels);
-    };
-    WireCost cost =
-        wire_cost(in_flight, block, width(filter.input, filter.channels_in), width(filter.output, filter.channels_out));
+    WireCost cost = wire_cost(in_flight, block, instant_of(filter));
     cost.bytes_to_host += page_bytes * static_cast<std::int64_t>(greeting.filters.size() + greeting.settings.size());
     // The rig's rate: a pseudo-terminal has none of its own, and may be paced.
     return std::min(wire_seconds(cost, rig.baud), longest_drain_s);
@@ -52,6 +48,11 @@ std::string filter_names(const Greeting& greeting) {
 bool same_settings(const Greeting& a, const Greeting& b) {
     return std::equal(a.settings.begin(), a.settings.end(), b.settings.begin(), b.settings.end(),
                       [](const BoardSetting& x, const BoardSetting& y) { return x.name == y.name; });
+}
+
+/// "1 sample out for 8 in"
+std::string rate_text(std::int64_t up, std::int64_t down) {
+    return std::to_string(up) + (up == 1 ? " sample" : " samples") + " out for " + std::to_string(down) + " in";
 }
 
 std::string channels_text(int in, int out) { return std::to_string(in) + " in, " + std::to_string(out) + " out"; }
@@ -87,7 +88,8 @@ Outcome<bool> runs_already(const Rig& rig, const Image& image, const Clock& cloc
 
 }  // namespace
 
-Outcome<std::size_t> agreeing_filter(const Greeting& greeting, const Signal& signal, const std::string& port) {
+Outcome<std::size_t> agreeing_filter(const Greeting& greeting, const Signal& signal, const std::string& port,
+                                     const RateCycle& rate) {
     const auto refuse = [&](std::string problem, std::string remedy) {
         return Error{ErrorKind::bench, port, std::move(problem), std::move(remedy)};
     };
@@ -119,10 +121,15 @@ Outcome<std::size_t> agreeing_filter(const Greeting& greeting, const Signal& sig
     if (filter.channels_in != signal.channels || filter.channels_out != signal.channels)
         return differs("channels", channels_text(filter.channels_in, filter.channels_out),
                        channels_text(signal.channels, signal.channels));
+    if (rate != RateCycle{filter.down, filter.up}) {
+        return refuse("filter \"" + filter.name + "\" returns " + rate_text(filter.up, filter.down) +
+                          ", that of the plan " + rate_text(rate.outputs, rate.inputs),
+                      "correct the factors in [[filter]] of the plan, or flash the firmware it is about");
+    }
     return number;
 }
 
-Outcome<Board> open_board(const Rig& rig, const Signal& signal, const std::optional<Image>& image, const Clock& clock,
+Outcome<Board> open_board(const Rig& rig, const Plan& plan, const std::optional<Image>& image, const Clock& clock,
                           FirmwareCheck& firmware) {
     if (image) {
         firmware.image_file = image->file;
@@ -157,7 +164,7 @@ Outcome<Board> open_board(const Rig& rig, const Signal& signal, const std::optio
         }
         firmware.state = FirmwareCheck::State::agrees;
     }
-    auto number = agreeing_filter(board->greeting, signal, board->link->name());
+    auto number = agreeing_filter(board->greeting, plan.signal, board->link->name(), rate_cycle_of(plan));
     if (!number) return number.error();
     board->filter_number = *number;
     return board;

@@ -6,7 +6,7 @@
 #include <optional>
 #include <string>
 
-#include "oracle/judge/plan.hpp"
+#include "oracle/judge/case_rates.hpp"
 #include "runner/config/rig.hpp"
 #include "runner/link/link.hpp"
 #include "runner/wire/wire.hpp"
@@ -31,11 +31,13 @@ struct Image {
 /// Runs [commands].before_run unless the board already runs `image`, opens the port, greets.
 /// Errors: bench (command, port, silence, a filter or format that the board does not have, another
 /// build-id than the image), interrupted. `firmware` is filled with what was found out.
-Outcome<Board> open_board(const Rig& rig, const Signal& signal, const std::optional<Image>& image, const Clock& clock,
+Outcome<Board> open_board(const Rig& rig, const Plan& plan, const std::optional<Image>& image, const Clock& clock,
                           FirmwareCheck& firmware);
 
-/// Which of the board's filters the plan is about. Errors are of kind bench, place = the port.
-Outcome<std::size_t> agreeing_filter(const Greeting& greeting, const Signal& signal, const std::string& port);
+/// Which of the board's filters the plan is about; `rate` is that of the plan. Errors are of kind bench, place = the
+/// port.
+Outcome<std::size_t> agreeing_filter(const Greeting& greeting, const Signal& signal, const std::string& port,
+                                     const RateCycle& rate = {});
 
 /// After a case went wrong: a new session over the same port, with the same firmware and filter.
 Outcome<void> greet_again(Board& board, const Rig& rig, const Clock& clock);

@@ -5,6 +5,7 @@
 #include <set>
 
 #include "oracle/judge/case_judge.hpp"
+#include "oracle/judge/case_rates.hpp"
 #include "runner/record/capture_file.hpp"
 #include "runner/report/people.hpp"
 #include "runner/world/interrupt.hpp"
@@ -179,12 +180,13 @@ Outcome<CaseResult> judge_capture(const RecordedRun& record, const Plan& plan, c
     if (!path) return path.error();
     auto capture = CaptureFile::open(files, *path, shown, plan.signal.output, plan.signal.channels);
     if (!capture) return capture.error();
-    const std::int64_t length = the_case.stimulus->length_samples();
+    const std::int64_t length = returned_samples(plan, the_case);
     if (capture->samples() != length) {
-        return Error{
-            ErrorKind::input, shown,
-            "it holds " + counted(capture->samples(), "sample", "samples") + ", the stimulus has " + count_text(length),
-            "the record was edited; capture anew with halflsb check"};
+        const bool as_sent = length == the_case.stimulus->length_samples();
+        return Error{ErrorKind::input, shown,
+                     "it holds " + counted(capture->samples(), "sample", "samples") +
+                         (as_sent ? ", the stimulus has " : ", the plan's filter returns ") + count_text(length),
+                     "the record was edited; capture anew with halflsb check"};
     }
     CaseJudge judge(plan, the_case);
     std::vector<Code> codes;

@@ -2,6 +2,7 @@
 
 #include "oracle/filters/channel_stages.hpp"
 #include "oracle/judge/case_judge.hpp"
+#include "oracle/judge/case_rates.hpp"
 #include "runner/paper_arithmetic.hpp"
 #include "runner/paper_filter.hpp"
 #include "runner/wire/wire_cost.hpp"
@@ -10,10 +11,12 @@ namespace halflsb {
 
 double wire_seconds_of(const Plan& plan, const Case& the_case, const Rig& rig) {
     const auto channels = static_cast<std::size_t>(plan.signal.channels);
+    const RateCycle rate = rate_cycle_of(plan);
     const std::int64_t before = the_case.start == Start::flush ? the_case.start_samples : 0;
     return wire_seconds(
         wire_cost(the_case.stimulus->length_samples() + before, rig.block_samples,
-                  plan.signal.input.word_bytes() * channels, plan.signal.output.word_bytes() * channels),
+                  {plan.signal.input.word_bytes() * channels, plan.signal.output.word_bytes() * channels,
+                   static_cast<int>(rate.outputs), static_cast<int>(rate.inputs)}),
         rig.baud);
 }
 

@@ -6,6 +6,7 @@
 #include "oracle/arithmetic/limit_cycle.hpp"
 #include "oracle/filters/channel_stages.hpp"
 #include "oracle/filters/rates.hpp"
+#include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/derived_limits.hpp"
 #include "runner/paper_filter.hpp"
 #include "runner/paper_headroom.hpp"
@@ -113,7 +114,7 @@ PredictedSilence silence_of(const DescribedChain& described, double worth) {
 
 std::int64_t longest_case(const Plan& plan, const std::vector<std::size_t>& selected) {
     std::int64_t longest = 1;
-    for (const std::size_t index : selected) longest = std::max(longest, judged_samples(plan.cases[index]));
+    for (const std::size_t index : selected) longest = std::max(longest, judged_samples(plan, plan.cases[index]));
     return longest;
 }
 

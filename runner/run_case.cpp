@@ -6,6 +6,7 @@
 #include <functional>
 
 #include "oracle/judge/case_judge.hpp"
+#include "oracle/judge/case_rates.hpp"
 #include "runner/world/interrupt.hpp"
 #include "runner/world/sha256.hpp"
 
@@ -34,7 +35,10 @@ public:
         Wire& wire = stage_.wire;
         const bool goes_on = stage_.the_case.start != Start::reset && wire.is_streaming(stage_.filter_number);
         if (!goes_on) {
-            if (auto started = wire.start(stage_.filter_number); !started) return started;
+            const auto returned = [rates = CaseRates(stage_.plan, stage_.the_case)](std::int64_t sent) {
+                return rates.returned(sent);
+            };
+            if (auto started = wire.start(stage_.filter_number, returned); !started) return started;
         }
         const auto changes = stage_.settings.changes_for(stage_.the_case);
         if (!changes.empty()) return stage_.settings.make(changes, wire, stage_.clock);
@@ -43,20 +47,20 @@ public:
 
     /// Until the answer to the last sample is there.
     Outcome<void> pass(const Passage& passage) {
-        std::int64_t sent = 0, received = 0;
-        const std::int64_t done_before = facts_.samples_received;
-        while (received < passage.samples) {
+        std::int64_t sent = 0, answered = 0;
+        const std::int64_t sent_before = facts_.samples_sent;
+        while (answered < passage.samples) {
             if (auto queued = send_ahead(passage, sent); !queued) return queued;
             auto step = stage_.wire.advance(stage_.clock.now() + seconds(step_s));
             if (!step) return step.error();
-            if (!step->samples.empty()) {
+            if (step->answered > 0) {
                 if (auto kept = passage.keep(*step); !kept) return kept;
-                received += static_cast<std::int64_t>(step->samples.size() / channels_);
-                facts_.samples_received = done_before + received;
+                answered += step->answered;
+                facts_.samples_received += static_cast<std::int64_t>(step->samples.size() / channels_);
                 if (auto queued = send_ahead(passage, sent); !queued) return queued;
                 passage.look(step->samples);
             }
-            stage_.observer.progress(stage_.place, facts_.samples_received, sent_samples(stage_.the_case));
+            stage_.observer.progress(stage_.place, sent_before + answered, sent_samples(stage_.the_case));
         }
         return {};
     }

@@ -53,12 +53,10 @@ RunResult facts_of(const RunRequest& request, const Clock& clock) {
 std::optional<double> wire_seconds_of(const RunRequest& request, const Board& board, int block_samples) {
     const long baud = board.link->baud();
     if (baud <= 0) return std::nullopt;
-    const Signal& signal = request.plan.signal;
-    const auto channels = static_cast<std::size_t>(signal.channels);
+    const WireInstant instant = instant_of(board.greeting.filters[board.filter_number]);
     double total_s = 0.0;
     for (const std::size_t index : request.selected) {
-        const WireCost cost = wire_cost(sent_samples(request.plan.cases[index]), block_samples,
-                                        channels * signal.input.word_bytes(), channels * signal.output.word_bytes());
+        const WireCost cost = wire_cost(sent_samples(request.plan.cases[index]), block_samples, instant);
         total_s += wire_seconds(cost, baud);
     }
     return total_s;
@@ -118,7 +116,7 @@ void put_settings_back(const RunDesk& desk, bool ended_early, RunResult& run) {
 /// Everything between the open folder and the last case; what ended it early.
 Outcome<void> run_on_rig(const RunRequest& request, RunResult& run, RunFolder& folder, Files& files, const Clock& clock,
                          RunObserver& observer) {
-    auto board = open_board(request.rig, request.plan.signal, request.image, clock, run.firmware);
+    auto board = open_board(request.rig, request.plan, request.image, clock, run.firmware);
     if (!board) return board.error();
     return run_cases(request, *board, run, folder, files, clock, observer);
 }

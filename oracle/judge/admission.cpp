@@ -1,35 +1,35 @@
 #include "oracle/judge/admission.hpp"
 
 #include <algorithm>
-#include <charconv>
 #include <cmath>
 #include <cstdlib>
 #include <utility>
 
 #include "oracle/arithmetic/described.hpp"
-#include "oracle/filters/rates.hpp"
+#include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/derived_limits.hpp"
 #include "oracle/judge/latency_evidence.hpp"
 #include "oracle/judge/leftover.hpp"
+#include "oracle/judge/rate_admission.hpp"
 #include "oracle/judge/response_verdict.hpp"
 #include "oracle/judge/units.hpp"
 
 namespace halflsb {
 namespace {
 
-std::string brief(double number) {
-    char text[32];
-    const auto end = std::to_chars(text, text + sizeof text, number, std::chars_format::general, 4).ptr;
-    return std::string(text, end);
-}
-
 /// Noise for a remedy: long enough once the discard of a running case is over.
-std::int64_t noise_samples(const Case& the_case) { return 4096 + first_judged_sample(the_case); }
+std::int64_t noise_samples(const Plan& plan, const Case& the_case) {
+    const std::int64_t discarded = the_case.start == Start::running ? the_case.start_samples : 0;
+    const CaseRates rates(plan, the_case);
+    // Enough on the slower side.
+    const std::int64_t cycles = (4096 + rates.cycle().outputs - 1) / rates.cycle().outputs;
+    return std::max(cycles, rates.cycles_within(4096)) * rates.cycle().inputs + discarded;
+}
 
 /// White noise has no second lag that looks like the first: would it do for this filter?
 bool noise_can_tell(const Plan& plan, const Case& the_case) {
     ParameterValues values;
-    values.set("length_samples", noise_samples(the_case));
+    values.set("length_samples", noise_samples(plan, the_case));
     values.set("level_ratio", 0.5);
     auto noise = make_stimulus("noise", values, {rate_hz_of(plan, the_case), plan.signal.input});
     if (!noise) return false;
@@ -44,13 +44,15 @@ void check_latency(const Plan& plan, const Case& the_case, const Rule& rule, std
     if (evidence.can_tell) return;
     Refusal refusal{rule.position, {}, {}};
     if (evidence.expected_is_outside) {
-        const int expected = expected_lag_of(the_case), window = lag_window_of(the_case);
+        const int expected = expected_lag_of(the_case), window = lag_window_of(plan, the_case);
         refusal.problem = "case \"" + the_case.name + "\" is too short for a latency of " + std::to_string(expected) +
                           (std::abs(expected) == 1 ? " sample" : " samples") + ": lags of -" + std::to_string(window) +
                           " to " + std::to_string(window) + " can be told from " +
-                          std::to_string(judged_samples(the_case)) + " samples";
-        refusal.remedy = "give it at least " +
-                         std::to_string(first_judged_sample(the_case) + 2 * std::abs(expected) + 1) + " samples";
+                          std::to_string(judged_samples(plan, the_case)) + " samples";
+        const CaseRates rates(plan, the_case);
+        const std::int64_t returned = first_judged_sample(plan, the_case) + 2 * std::abs(expected) + 1;
+        const std::int64_t cycles = (returned + rates.cycle().outputs - 1) / rates.cycle().outputs;
+        refusal.remedy = "give it at least " + std::to_string(cycles * rates.cycle().inputs) + " samples";
         refusals.push_back(std::move(refusal));
         return;
     }
@@ -63,7 +65,7 @@ void check_latency(const Plan& plan, const Case& the_case, const Rule& rule, std
     refusal.remedy =
         noise_can_tell(plan, the_case)
             ? "give it noise (shape = \"noise\", level_ratio = 0.5, length_samples = " +
-                  std::to_string(noise_samples(the_case)) + "), or write the rule in another case"
+                  std::to_string(noise_samples(plan, the_case)) + "), or write the rule in another case"
             : "no stimulus of this filter tells it within these error limits; tighten rms_lsb or leave the rule out";
     refusals.push_back(std::move(refusal));
 }
@@ -161,8 +163,8 @@ void check_derived(const Plan& plan, const Case& the_case, const Rule& rule, std
 }
 
 /// A running case must have something left to judge.
-void check_discard(const Case& the_case, std::vector<Refusal>& refusals) {
-    if (judged_samples(the_case) > 0) return;
+void check_discard(const Plan& plan, const Case& the_case, std::vector<Refusal>& refusals) {
+    if (judged_samples(plan, the_case) > 0) return;
     const std::string length = std::to_string(the_case.stimulus->length_samples());
     refusals.push_back({the_case.position,
                         "case \"" + the_case.name + "\" discards its first " + std::to_string(the_case.start_samples) +
@@ -181,7 +183,8 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
                             "leave the rule out; rules about error, latency and unchanged hold"});
         return;
     }
-    const Spectrum spectrum = measured_spectrum(the_case);
+    if (!response_is_told(plan, the_case, rule, refusals)) return;
+    const Spectrum spectrum = measured_spectrum(plan, the_case);
     const std::string noise = "use noise or a chirp over that band";
     if (spectrum.tones.empty() && spectrum.bands.empty()) {
         refusals.push_back(
@@ -190,7 +193,7 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
              "use noise, a chirp, a sine or a multitone"});
         return;
     }
-    const std::int64_t length = judged_samples(the_case);
+    const std::int64_t length = judged_samples(plan, the_case);
     if (!tones_resolved(spectrum.tones, length)) {
         refusals.push_back(
             {rule.position,
@@ -208,11 +211,12 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
         return;
     }
     for (const ResponseBand& band : std::get<ResponseRule>(rule.kind).bands) {
-        if (!answerable_hz(band, the_case, rate_hz_of(plan, the_case)).empty()) continue;
+        if (!answerable_hz(band, plan, the_case).empty()) continue;
         const std::string band_text = brief(band.from_hz) + " to " + brief(band.to_hz) + " Hz";
         std::string remedy = noise;
         if (spectrum.tones.empty()) {
-            const double spacing_hz = rate_hz_of(plan, the_case) / static_cast<double>(response_segment_for(length));
+            const double spacing_hz =
+                returned_rate_hz(plan, the_case) / static_cast<double>(response_segment_for(length));
             remedy += "; its bins are " + brief(spacing_hz) + " Hz apart, a longer record brings them closer";
         } else {
             remedy += ", or a multitone with a tone in it";
@@ -223,28 +227,13 @@ void check_response(const Plan& plan, const Case& the_case, const Rule& rule, st
     }
 }
 
-/// The rules compare sample n of the response with sample n of the reference.
-void check_rate(const Plan& plan, const Case& the_case, std::vector<Refusal>& refusals) {
-    for (int channel = 1; channel <= plan.signal.channels && !plan.filter_is_unknown; ++channel) {
-        const FilterChain chain = chain_of(plan, the_case, channel);
-        if (!changes_rate(chain)) continue;
-        const RateRatio ratio = rate_ratio(chain);
-        refusals.push_back({the_case.position,
-                            "the filter of case \"" + the_case.name + "\" changes the sample rate, " +
-                                std::to_string(ratio.up) + " out for " + std::to_string(ratio.down) +
-                                " in, and its rules compare sample with sample",
-                            "describe the filter up to where the rate changes, and let the board return that"});
-        return;
-    }
-}
-
 }  // namespace
 
 std::vector<Refusal> refusals(const Plan& plan, const Case& the_case) {
     std::vector<Refusal> found;
     check_rate(plan, the_case, found);
     if (!found.empty()) return found;
-    check_discard(the_case, found);
+    check_discard(plan, the_case, found);
     if (!found.empty()) return found;
     for (const Rule& rule : the_case.rules) {
         if (const auto* latency = std::get_if<LatencyRule>(&rule.kind); latency != nullptr && !latency->implicit) {

@@ -2,6 +2,7 @@
 
 #include <algorithm>
 
+#include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/response_verdict.hpp"
 #include "oracle/judge/units.hpp"
 
@@ -34,7 +35,7 @@ AlignedPass::AlignedPass(const Plan& plan, const Case& the_case, int channel, in
       channel_(channel),
       is_driven_(is_driven(the_case, channel)),
       lag_(lag_samples),
-      first_judged_(first_judged_sample(the_case)),
+      first_judged_(first_judged_sample(plan, the_case)),
       derived_(derived),
       to_skip_(lag_samples < 0 ? static_cast<std::size_t>(-lag_samples) : 0) {
     if (first_judged_ > 0 && lag_samples > 0) first_judged_ += lag_samples;
@@ -47,7 +48,7 @@ AlignedPass::AlignedPass(const Plan& plan, const Case& the_case, int channel, in
         }
     }
     const WantedReferences wanted = wanted_references(the_case, channel);
-    if (wanted.design) response_measure_ = make_response_measure(the_case);
+    if (wanted.design) response_measure_ = make_response_measure(plan, the_case);
     if (wanted.twin) exact_.emplace(plan.signal.output);
     if (lag_samples > 0) waiting_.append_silence(static_cast<std::size_t>(lag_samples), plan.signal, wanted);
 }

@@ -18,7 +18,13 @@ bool is_implicit_latency(const Rule& rule) {
 
 }  // namespace
 
-CaseJudge::CaseJudge(const Plan& plan, const Case& the_case) : plan_(plan), case_(the_case), sent_(plan, the_case) {
+CaseJudge::CaseJudge(const Plan& plan, const Case& the_case)
+    : plan_(plan),
+      case_(the_case),
+      rates_(plan, the_case),
+      block_sent_(rates_.cycles_within(judge_block_samples) * rates_.cycle().inputs),
+      block_returned_(rates_.cycles_within(judge_block_samples) * rates_.cycle().outputs),
+      sent_(plan, the_case) {
     if (!plan.filter_is_unknown) {
         channels_.reserve(static_cast<std::size_t>(plan.signal.channels));
         for (int channel = 1; channel <= plan.signal.channels; ++channel)
@@ -32,15 +38,35 @@ CaseJudge::CaseJudge(const Plan& plan, const Case& the_case) : plan_(plan), case
 void CaseJudge::add(std::span<const Code> response) {
     const auto channels = static_cast<std::size_t>(plan_.signal.channels);
     assert(response.size() % channels == 0);
+    const std::size_t cycle = static_cast<std::size_t>(rates_.cycle().outputs) * channels;
+    if (!waiting_.empty()) {
+        const std::size_t missing = std::min((cycle - waiting_.size() % cycle) % cycle, response.size());
+        waiting_.insert(waiting_.end(), response.begin(), response.begin() + static_cast<std::ptrdiff_t>(missing));
+        response = response.subspan(missing);
+        if (waiting_.size() % cycle != 0) return;
+        add_cycles(waiting_);
+        waiting_.clear();
+    }
+    const std::size_t whole = response.size() / cycle * cycle;
+    add_cycles(response.first(whole));
+    waiting_.assign(response.begin() + static_cast<std::ptrdiff_t>(whole), response.end());
+}
+
+void CaseJudge::add_cycles(std::span<const Code> response) {
+    const auto channels = static_cast<std::size_t>(plan_.signal.channels);
     while (!response.empty()) {
-        const auto part = response.first(std::min(response.size(), judge_block_samples * channels));
-        sent_.take(samples_, part.size() / channels);
+        const auto part =
+            response.first(std::min(response.size(), static_cast<std::size_t>(block_returned_) * channels));
+        const auto returned = static_cast<std::int64_t>(part.size() / channels);
+        const std::int64_t sent = returned / rates_.cycle().outputs * rates_.cycle().inputs;
+        sent_.take(sent_samples_, static_cast<std::size_t>(sent));
         for (ChannelJudge& judge : channels_) {
             judge.add(sent_.of_channel(judge.channel()),
                       one_channel(part, plan_.signal.channels, judge.channel(), one_));
         }
         for (UnchangedJudge& judge : unchanged_) judge.add(sent_.of_all(), part);
-        samples_ += static_cast<std::int64_t>(part.size() / channels);
+        sent_samples_ += sent;
+        samples_ += returned;
         response = response.subspan(part.size());
     }
 }
@@ -48,17 +74,19 @@ void CaseJudge::add(std::span<const Code> response) {
 Outcome<void> CaseJudge::go_through_again(const ResponseReplay& replay) {
     const auto channels = static_cast<std::size_t>(plan_.signal.channels);
     std::vector<Code> codes;
-    for (std::int64_t first = 0; first < samples_;) {
-        const auto count = std::min<std::int64_t>(judge_block_samples, samples_ - first);
+    for (std::int64_t first = 0, first_sent = 0; first < samples_;) {
+        const std::int64_t count = std::min(block_returned_, samples_ - first);
+        const std::int64_t sent = count / rates_.cycle().outputs * rates_.cycle().inputs;
         codes.resize(static_cast<std::size_t>(count) * channels);
         if (auto read = replay(first, codes); !read) return read.error();
-        sent_.take(first, static_cast<std::size_t>(count));
+        sent_.take(first_sent, static_cast<std::size_t>(sent));
         for (ChannelJudge& judge : channels_) {
             if (!judge.is_in_second_pass()) continue;
             judge.add_again(sent_.of_channel(judge.channel()),
                             one_channel(codes, plan_.signal.channels, judge.channel(), one_));
         }
         first += count;
+        first_sent += sent;
     }
     return {};
 }

@@ -6,6 +6,7 @@
 #include <span>
 #include <vector>
 
+#include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/channel_judge.hpp"
 #include "oracle/judge/latency_evidence.hpp"
 #include "oracle/judge/plan.hpp"
@@ -30,21 +31,26 @@ class CaseJudge {
 public:
     /// The plan and the case must outlive the judge.
     CaseJudge(const Plan& plan, const Case& the_case);
-    /// The next response samples, in order from instant 0: whole instants, a code a channel, adjacent.
+    /// The next response samples, in order from instant 0: whole instants, a code a channel, adjacent. Where the rate
+    /// changes, those of a rate cycle that is not whole yet wait for the rest of it.
     void add(std::span<const Code> response);
     /// After the last sample; only once. `replay` is asked only when some channel's response fits better at
     /// another lag than the expected one: the case is then gone through a second time. Fails when replay does.
     Outcome<CaseJudgement> finish(const ResponseReplay& replay);
 
 private:
+    void add_cycles(std::span<const Code> response);
     Outcome<void> go_through_again(const ResponseReplay& replay);
 
     const Plan& plan_;
     const Case& case_;
+    CaseRates rates_;
+    std::int64_t block_sent_, block_returned_;  ///< most instants that are looked at together, whole cycles
     SentBlock sent_;
     std::vector<ChannelJudge> channels_;  ///< none when the filter is unknown: there is no reference
     std::vector<UnchangedJudge> unchanged_;
-    std::int64_t samples_ = 0;  ///< instants
+    std::int64_t sent_samples_ = 0, samples_ = 0;  ///< instants; of the response those that were looked at
+    std::vector<Code> waiting_;                    ///< of the response, the rest
     std::vector<Code> one_;
 };
 

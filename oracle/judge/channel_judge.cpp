@@ -39,9 +39,9 @@ ChannelJudge::ChannelJudge(const Plan& plan, const Case& the_case, int channel)
       reference_(plan, the_case, channel, wanted_),
       derived_(asked_limits(plan, the_case, channel)),
       pass_(plan, the_case, channel, expected_lag_, derived_),
-      window_(lag_window_of(the_case)),
-      lag_(window_, expected_lag_, first_lag_sample(the_case, window_)),
-      discrimination_(window_, first_lag_sample(the_case, window_)),
+      window_(lag_window_of(plan, the_case)),
+      lag_(window_, expected_lag_, first_lag_sample(plan, the_case, window_)),
+      discrimination_(window_, first_lag_sample(plan, the_case, window_)),
       evidence_needed_(evidence_needed(the_case, plan.signal, derived_)) {}
 
 void ChannelJudge::add(std::span<const Code> sent, std::span<const Code> response) {
@@ -55,7 +55,7 @@ void ChannelJudge::add(std::span<const Code> sent, std::span<const Code> respons
     // small blocks do not look each time.
     if (has_evidence_) return;
     discrimination_.add(block.declared);
-    unlooked_samples_ += sent.size();
+    unlooked_samples_ += response.size();
     if (unlooked_samples_ < look_every_samples) return;
     unlooked_samples_ = 0;
     has_evidence_ = discrimination_.smallest() >= evidence_needed_;

@@ -24,7 +24,7 @@ public:
     ChannelJudge(const Plan& plan, const Case& the_case, int channel);
 
     int channel() const { return channel_; }
-    /// The channel's next codes, as many sent as returned, from index 0 on.
+    /// The channel's next codes, in whole rate cycles (case_rates.hpp), from index 0 on.
     void add(std::span<const Code> sent, std::span<const Code> response);
     /// After the last sample. True when the response fits better at another lag than the expected one: all
     /// samples must then come once more, to add_again().

@@ -4,6 +4,7 @@
 #include <cmath>
 #include <vector>
 
+#include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/leftover.hpp"
 #include "oracle/judge/units.hpp"
 
@@ -30,7 +31,7 @@ double rms_of_input(const Plan& plan, const Case& the_case) {
 
 BoundUse bound_use(const Plan& plan, const Case& the_case, int channel) {
     BoundUse use;
-    use.samples = std::max<std::int64_t>(judged_samples(the_case), 1);
+    use.samples = std::max<std::int64_t>(judged_samples(plan, the_case), 1);
     use.noise_like = is_driven(the_case, channel) && is_white_noise(the_case);
     if (use.noise_like) use.input_rms = rms_of_input(plan, the_case);
     return use;

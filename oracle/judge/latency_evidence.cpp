@@ -7,6 +7,7 @@
 #include <vector>
 
 #include "oracle/filters/channel_stages.hpp"
+#include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/latency_sigma.hpp"
 #include "oracle/judge/reference_source.hpp"
 #include "oracle/judge/sent_block.hpp"
@@ -29,17 +30,20 @@ std::vector<int> channels_to_look_at(const Plan& plan, const Case& the_case) {
 LatencyEvidence evidence_of(const Plan& plan, const Case& the_case, int channel) {
     LatencyEvidence evidence;
     evidence.channel = plan.signal.channels == 1 ? 0 : channel;
-    evidence.samples =
-        std::min(the_case.stimulus->length_samples(), latency_evidence_samples(chain_of(plan, the_case, channel)));
-    evidence.window = lag_window_for(evidence.samples - first_judged_sample(the_case));
-    evidence.expected_is_outside = std::abs(expected_lag_of(the_case)) > lag_window_of(the_case);
+    const CaseRates rates(plan, the_case);
+    const std::int64_t cycle = rates.cycle().inputs;
+    const std::int64_t most = latency_evidence_samples(chain_of(plan, the_case, channel));
+    evidence.samples = std::min(the_case.stimulus->length_samples(), (most + cycle - 1) / cycle * cycle);
+    evidence.window = lag_window_for(rates.returned(evidence.samples) - first_judged_sample(plan, the_case));
+    evidence.expected_is_outside = std::abs(expected_lag_of(the_case)) > lag_window_of(plan, the_case);
     const double sigma = latency_sigma(the_case, plan.signal, asked_limits(plan, the_case, channel));
-    LagDiscrimination discrimination(evidence.window, first_lag_sample(the_case, evidence.window));
+    LagDiscrimination discrimination(evidence.window, first_lag_sample(plan, the_case, evidence.window));
     ReferenceSource reference(plan, the_case, channel, {});
     SentBlock sent(plan, the_case);
     bool has_enough = false;
+    const std::int64_t block = rates.cycles_within(judge_block_samples) * cycle;
     for (std::int64_t first = 0; first < evidence.samples && !has_enough;) {
-        const auto count = std::min<std::int64_t>(judge_block_samples, evidence.samples - first);
+        const auto count = std::min(block, evidence.samples - first);
         sent.take(first, static_cast<std::size_t>(count));
         discrimination.add(reference.next(sent.of_channel(channel)).declared);
         evidence.smallest_ratio = discrimination.smallest() / (sigma * sigma);
@@ -65,10 +69,10 @@ std::int64_t latency_evidence_samples(const FilterChain& filter) {
     return static_cast<std::int64_t>(std::clamp(std::bit_floor(operations / operations_a_sample), fewest, most));
 }
 
-int lag_window_of(const Case& the_case) { return lag_window_for(judged_samples(the_case)); }
+int lag_window_of(const Plan& plan, const Case& the_case) { return lag_window_for(judged_samples(plan, the_case)); }
 
-std::int64_t first_lag_sample(const Case& the_case, int window) {
-    const std::int64_t first = first_judged_sample(the_case);
+std::int64_t first_lag_sample(const Plan& plan, const Case& the_case, int window) {
+    const std::int64_t first = first_judged_sample(plan, the_case);
     return first == 0 ? 0 : first + window;
 }
 

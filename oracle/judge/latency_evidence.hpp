@@ -16,10 +16,10 @@ inline constexpr double latency_evidence_ratio = 130.0;
 std::int64_t latency_evidence_samples(const FilterChain& filter);
 
 /// The lags that a case can be searched for, from its judged samples.
-int lag_window_of(const Case& the_case);
+int lag_window_of(const Plan& plan, const Case& the_case);
 /// The first sample whose lag counts: of a running case every sample that it meets, up to the window's end on
 /// either side, must come after the discard.
-std::int64_t first_lag_sample(const Case& the_case, int window);
+std::int64_t first_lag_sample(const Plan& plan, const Case& the_case, int window);
 /// The delay that the case's latency rule asks for; 0 without one.
 int expected_lag_of(const Case& the_case);
 
@@ -33,7 +33,7 @@ struct LatencyEvidence {
     int hardest_lag = 0;
     int channel = 0;                   ///< the one with the least evidence, from 1; 0: the signal has only one
     int window = 0;                    ///< lags of -window .. window were looked at
-    std::int64_t samples = 0;          ///< how many samples of the case were looked at, at most
+    std::int64_t samples = 0;          ///< how many sent samples of the case were looked at, at most
     bool expected_is_outside = false;  ///< the expected latency lies beyond the window
 };
 LatencyEvidence latency_evidence(const Plan& plan, const Case& the_case);

@@ -9,6 +9,7 @@
 #include "oracle/arithmetic/exact_chain.hpp"
 #include "oracle/filters/impulse_run.hpp"
 #include "oracle/filters/rates.hpp"
+#include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/units.hpp"
 
 namespace halflsb {
@@ -96,7 +97,7 @@ Leftover leftover(const DescribedChain& chain, const Plan& plan, const Case& the
         return {half, half, half};
     }
     const double full_scale = full_scale_value(plan.signal.input);
-    const auto count = static_cast<double>(std::max<std::int64_t>(judged_samples(the_case), 1));
+    const auto count = static_cast<double>(std::max<std::int64_t>(judged_samples(plan, the_case), 1));
     const auto tails = tails_from(static_cast<std::size_t>(the_case.start_samples), exact);
     double sum = 0.0, squares = 0.0, left = count;
     for (std::size_t n = 0; n < tails.size() && left > 0.0; ++n, left -= 1.0) {

@@ -1,7 +1,5 @@
 #include "oracle/judge/plan.hpp"
 
-#include <algorithm>
-
 namespace halflsb {
 
 std::string_view name_of(Start start) {
@@ -25,14 +23,6 @@ FilterChain chain_of(const Plan& plan, const Case& the_case, int channel) {
 }
 
 bool is_driven(const Case& the_case, int channel) { return !the_case.channel || *the_case.channel == channel; }
-
-std::int64_t first_judged_sample(const Case& the_case) {
-    return the_case.start == Start::running ? the_case.start_samples : 0;
-}
-
-std::int64_t judged_samples(const Case& the_case) {
-    return std::max<std::int64_t>(the_case.stimulus->length_samples() - first_judged_sample(the_case), 0);
-}
 
 void fill_case_codes(const Plan& plan, const Case& the_case, std::int64_t first_index, std::span<Code> codes) {
     const auto channels = static_cast<std::size_t>(plan.signal.channels);

@@ -88,11 +88,6 @@ FilterChain chain_of(const Plan& plan, const Case& the_case, int channel);
 /// Whether the channel gets the stimulus, or zeros.
 bool is_driven(const Case& the_case, int channel);
 
-/// Index of the first sample that a rule may look at: start_samples of a running case, else 0.
-std::int64_t first_judged_sample(const Case& the_case);
-/// How many samples there are from that one on; 0 when all are discarded.
-std::int64_t judged_samples(const Case& the_case);
-
 /// The codes that are sent: instants first_index, first_index + 1 ..., each with a code a channel, adjacent.
 void fill_case_codes(const Plan& plan, const Case& the_case, std::int64_t first_index, std::span<Code> codes);
 

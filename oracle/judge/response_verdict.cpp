@@ -5,6 +5,7 @@
 #include <cmath>
 
 #include "oracle/filters/filter.hpp"
+#include "oracle/judge/case_rates.hpp"
 
 namespace halflsb {
 namespace {
@@ -53,26 +54,36 @@ JudgedFigure held(const Extreme& extreme, double limit_db, bool at_least, const 
 
 }  // namespace
 
-Spectrum measured_spectrum(const Case& the_case) {
+Spectrum measured_spectrum(const Plan& plan, const Case& the_case) {
     Spectrum spectrum = the_case.stimulus->spectrum();
     if (!spectrum.bands.empty()) spectrum.tones.clear();
+    const RateRatio ratio = CaseRates(plan, the_case).ratio();
+    if (ratio == RateRatio{}) return spectrum;
+    const double returned_over_sent = static_cast<double>(ratio.up) / ratio.down;
+    for (double& tone : spectrum.tones) tone /= returned_over_sent;
+    for (Spectrum::Band& band : spectrum.bands) {
+        band.from_cycles_per_sample /= returned_over_sent;
+        band.to_cycles_per_sample /= returned_over_sent;
+    }
     return spectrum;
 }
 
-std::unique_ptr<ResponseMeasure> make_response_measure(const Case& the_case) {
-    const Spectrum spectrum = measured_spectrum(the_case);
-    if (!spectrum.tones.empty()) return make_tone_response(spectrum.tones, judged_samples(the_case));
-    return make_welch_response(response_segment_for(judged_samples(the_case)));
+std::unique_ptr<ResponseMeasure> make_response_measure(const Plan& plan, const Case& the_case) {
+    const Spectrum spectrum = measured_spectrum(plan, the_case);
+    const std::int64_t length = judged_samples(plan, the_case);
+    if (!spectrum.tones.empty()) return make_tone_response(spectrum.tones, length);
+    return make_welch_response(response_segment_for(length));
 }
 
-std::vector<double> answerable_hz(const ResponseBand& band, const Case& the_case, double rate_hz) {
-    const Spectrum spectrum = measured_spectrum(the_case);
+std::vector<double> answerable_hz(const ResponseBand& band, const Plan& plan, const Case& the_case) {
+    const Spectrum spectrum = measured_spectrum(plan, the_case);
+    const double rate_hz = returned_rate_hz(plan, the_case);
     std::vector<double> found;
     for (const double tone : spectrum.tones) {
         if (within(tone * rate_hz, band)) found.push_back(tone * rate_hz);
     }
     if (!spectrum.tones.empty()) return found;
-    const std::size_t segment = response_segment_for(judged_samples(the_case));
+    const std::size_t segment = response_segment_for(judged_samples(plan, the_case));
     for (std::size_t bin = 0; bin <= segment / 2; ++bin) {
         const double cycles_per_sample = static_cast<double>(bin) / static_cast<double>(segment);
         if (within(cycles_per_sample * rate_hz, band) && has_power(spectrum, cycles_per_sample))
@@ -84,16 +95,17 @@ std::vector<double> answerable_hz(const ResponseBand& band, const Case& the_case
 RuleVerdict judge_response(const ResponseRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
                            int channel, const std::vector<ResponsePoint>& points) {
     RuleVerdict verdict{asked, Verdict::pass, "design", {}, {}, std::nullopt};
-    const Spectrum spectrum = measured_spectrum(the_case);
+    const Spectrum spectrum = measured_spectrum(plan, the_case);
     const FilterChain chain = chain_of(plan, the_case, channel);
-    const double rate_hz = rate_hz_of(plan, the_case);
+    const double sent_hz = rate_hz_of(plan, the_case), returned_hz = returned_rate_hz(plan, the_case);
+    const double returned_over_sent = returned_hz / sent_hz;
     for (const ResponseBand& band : rule.bands) {
         std::optional<Extreme> lowest, highest;
         for (const ResponsePoint& point : points) {
-            const double hz = point.cycles_per_sample * rate_hz;
+            const double hz = point.cycles_per_sample * returned_hz;
             if (!within(hz, band) || (spectrum.tones.empty() && !has_power(spectrum, point.cycles_per_sample)))
                 continue;
-            const std::complex<double> design = response_at(chain, point.cycles_per_sample);
+            const std::complex<double> design = response_at(chain, point.cycles_per_sample * returned_over_sent);
             double measured_db = gain_db(design + point.difference);
             if (rule.relative_to_design) measured_db -= gain_db(design);
             // NaN must not hide behind a comparison that is false.

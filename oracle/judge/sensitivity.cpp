@@ -9,6 +9,7 @@
 #include "oracle/arithmetic/twin.hpp"
 #include "oracle/filters/channel_stages.hpp"
 #include "oracle/judge/case_judge.hpp"
+#include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/derived_limits.hpp"
 
 namespace halflsb {
@@ -18,14 +19,16 @@ namespace {
 std::vector<Code> twin_response(const Plan& plan, const Case& the_case, std::span<const Code> sent) {
     const auto channels = static_cast<std::size_t>(plan.signal.channels);
     const std::size_t instants = sent.size() / channels;
-    std::vector<Code> response(sent.size()), in(instants), out(instants);
+    const auto returned =
+        static_cast<std::size_t>(CaseRates(plan, the_case).returned(static_cast<std::int64_t>(instants)));
+    std::vector<Code> response(returned * channels), in(instants), out(returned);
     for (std::size_t c = 0; c < channels; ++c) {
         const auto described = described_channel(plan, the_case, static_cast<int>(c) + 1);
         const auto twin = described ? make_twin(*described) : nullptr;
         if (twin == nullptr) return {};
         for (std::size_t n = 0; n < instants; ++n) in[n] = sent[n * channels + c];
         twin->process(in, out);
-        for (std::size_t n = 0; n < instants; ++n) response[n * channels + c] = out[n];
+        for (std::size_t n = 0; n < returned; ++n) response[n * channels + c] = out[n];
     }
     return response;
 }
@@ -115,7 +118,9 @@ Sensitivity sensitivity(const Plan& plan, const std::vector<std::size_t>& cases,
     for (const std::size_t index : cases) {
         if (!go_on()) break;
         const Case the_case = case_to_look_at(plan.cases[index]);
-        const std::int64_t length = std::min(the_case.stimulus->length_samples(), sensitivity_samples);
+        const CaseRates rates(plan, the_case);
+        const std::int64_t length = std::min(the_case.stimulus->length_samples(),
+                                             rates.cycles_within(sensitivity_samples) * rates.cycle().inputs);
         result.is_cut = result.is_cut || length < the_case.stimulus->length_samples();
         result.samples += length;
         std::vector<Code> sent(static_cast<std::size_t>(length) * channels);

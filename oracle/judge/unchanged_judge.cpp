@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cstdlib>
 
+#include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/first_bad_watch.hpp"
 #include "oracle/judge/units.hpp"
 
@@ -242,10 +243,11 @@ Neighbourhood UnchangedJudge::around_bad() const {
     around.first_index = around_first_;
     const CodeScale scale(plan_.signal.output);
     const std::size_t instants = around_.size() / channels_;
-    std::vector<Code> sent(around_.size());
-    fill_case_codes(plan_, case_, around_first_, sent);
+    const CaseRates rates(plan_, case_);
+    std::vector<Code> sent(channels_);
     for (std::size_t i = 0; i < instants; ++i) {
-        around.stimulus.push_back(sent[i * channels_ + bad_channel_]);
+        fill_case_codes(plan_, case_, rates.newest_sent(around_first_ + static_cast<std::int64_t>(i)), sent);
+        around.stimulus.push_back(sent[bad_channel_]);
         around.response.push_back(around_[i * channels_ + bad_channel_]);
         const std::int64_t index = around_first_ + static_cast<std::int64_t>(i);
         if (index >= kept_) continue;

@@ -1,6 +1,7 @@
 #include "oracle/judge/units.hpp"
 
 #include <algorithm>
+#include <charconv>
 #include <cmath>
 
 namespace halflsb {
@@ -37,6 +38,12 @@ std::string unit_name(Limit::In in, const Signal& signal) {
 
 Limit::In natural_unit(const Signal& signal) {
     return signal.output.has_lsb() ? Limit::In::lsb : Limit::In::full_scale_ratio;
+}
+
+std::string brief(double number) {
+    char text[32];
+    const auto end = std::to_chars(text, text + sizeof text, number, std::chars_format::general, 4).ptr;
+    return std::string(text, end);
 }
 
 }  // namespace halflsb

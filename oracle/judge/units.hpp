@@ -19,5 +19,7 @@ double value_of(const Limit& limit, const Signal& signal);
 std::string unit_name(Limit::In in, const Signal& signal);
 /// The unit in which errors are told when no limit chooses one: LSB, or full scale for f32.
 Limit::In natural_unit(const Signal& signal);
+/// A figure for a message, with 4 significant digits.
+std::string brief(double number);
 
 }  // namespace halflsb

@@ -2,6 +2,7 @@
 #include <algorithm>
 #include <span>
 
+#include "oracle/judge/case_rates.hpp"
 #include "runner/config/baseline_file.hpp"
 #include "runner/world/printable.hpp"
 #include "runner/world/sha256.hpp"
@@ -77,7 +78,7 @@ std::string BaselineFiles::difference(const Plan& plan, const Case& the_case, co
     if (baseline.channels != plan.signal.channels) {
         return differs("its channels were", std::to_string(baseline.channels), std::to_string(plan.signal.channels));
     }
-    const std::int64_t length = the_case.stimulus->length_samples();
+    const std::int64_t length = returned_samples(plan, the_case);
     if (entry.samples != length)
         return differs("its samples were", std::to_string(entry.samples), std::to_string(length));
     if (stimulus_sha256(plan, the_case) != entry.stimulus_sha256) return "its stimulus was another one";

@@ -107,8 +107,9 @@ std::string invalid_block(const CaseResult& result, const TextStyle& style) {
     }
     const StreamFacts& stream = result.stream;
     out += wrapped(style,
-                   "capture " + std::string(name_of(result.grade)) + ": " + count_text(stream.samples_received) +
-                       " of " + counted(stream.samples_sent, "sample", "samples") + " sent came back; " +
+                   "capture " + std::string(name_of(result.grade)) + ": " +
+                       counted(stream.samples_sent, "sample", "samples") + " sent, " +
+                       count_text(stream.samples_received) + " came back; " +
                        counted(stream.frames_bad_at_host, "bad frame", "bad frames") + " here, " +
                        counted(stream.resends, "resend", "resends") + "; " + board_counters_text(stream),
                    2);

@@ -152,6 +152,9 @@ Outcome<void> GreetingReader::add_filter(message::BytesView rest) {
     if (!output) return output.error();
     if (page->channels_in == 0 || page->channels_out == 0)
         return refused(where + ": a filter has at least one channel");
+    if (page->up == 0 || page->down == 0)
+        return refused(where + ": it returns " + std::to_string(page->up) + " samples for " +
+                       std::to_string(page->down));
     BoardFilter filter;
     filter.name = page->name;
     filter.injection = static_cast<Injection>(page->injection);
@@ -161,6 +164,8 @@ Outcome<void> GreetingReader::add_filter(message::BytesView rest) {
     filter.channels_out = page->channels_out;
     filter.nodes = page->nodes;
     filter.tables = page->tables;
+    filter.up = page->up;
+    filter.down = page->down;
     greeting_.filters.push_back(std::move(filter));
     return {};
 }

@@ -111,8 +111,8 @@ void encode(const BoardPage& m, Bytes& out) {
         .integer(m.tick_bits);
 }
 void encode(const FilterPage& m, Bytes& out) {
-    BodyWriter(out)
-        .text(m.name)
+    BodyWriter page(out);
+    page.text(m.name)
         .integer(m.injection)
         .integer(m.input)
         .integer(m.output)
@@ -120,6 +120,7 @@ void encode(const FilterPage& m, Bytes& out) {
         .integer(m.channels_out)
         .integer(m.nodes)
         .integer(m.tables);
+    if (m.up != 1 || m.down != 1) page.integer(m.up).integer(m.down);
 }
 void encode(const SettingPage& m, Bytes& out) {
     BodyWriter(out).text(m.name).integer(m.minimum).integer(m.maximum).integer(m.value);
@@ -223,16 +224,17 @@ std::optional<BoardPage> decode(BytesView body) {
 template <>
 std::optional<FilterPage> decode(BytesView body) {
     FilterPage m;
-    return whole(BodyReader(body)
-                     .text(m.name, largest_text_bytes)
-                     .integer(m.injection)
-                     .integer(m.input)
-                     .integer(m.output)
-                     .integer(m.channels_in)
-                     .integer(m.channels_out)
-                     .integer(m.nodes)
-                     .integer(m.tables),
-                 std::move(m));
+    BodyReader reader(body);
+    reader.text(m.name, largest_text_bytes)
+        .integer(m.injection)
+        .integer(m.input)
+        .integer(m.output)
+        .integer(m.channels_in)
+        .integer(m.channels_out)
+        .integer(m.nodes)
+        .integer(m.tables);
+    if (reader.bytes_left() > 0) reader.integer(m.up).integer(m.down);
+    return whole(reader, std::move(m));
 }
 template <>
 std::optional<SettingPage> decode(BytesView body) {

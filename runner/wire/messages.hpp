@@ -119,6 +119,7 @@ struct BoardPage {
 struct FilterPage {
     std::string name;
     std::uint8_t injection = 0, input = 0, output = 0, channels_in = 0, channels_out = 0, nodes = 0, tables = 0;
+    std::uint16_t up = 1, down = 1;  ///< travel only where one of them is not 1
 };
 struct SettingPage {
     std::string name;

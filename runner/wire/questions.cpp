@@ -105,7 +105,7 @@ Outcome<message::Counters> FramedSession::ask_counters() {
     return *counters;
 }
 
-Outcome<void> FramedSession::start(std::size_t filter_number) {
+Outcome<void> FramedSession::start(std::size_t filter_number, ReturnedCount returned) {
     if (error_) return *error_;
     if (!greeting_ || filter_number >= greeting_->filters.size())
         return Error{ErrorKind::defect, link_.name(),
@@ -116,6 +116,8 @@ Outcome<void> FramedSession::start(std::size_t filter_number) {
     outgoing_done_ = 0;
     filter_ = greeting_->filters[filter_number];
     filter_number_ = filter_number;
+    returned_ = std::move(returned);
+    sent_before_reset_ = 0;
     const int asked = std::clamp(limits_.block_samples, 1, most_block_samples());
     block_samples_ = asked;
     // Never smaller than for the stream before, whose last answers are still signs of life.
@@ -154,8 +156,14 @@ Outcome<void> FramedSession::start(std::size_t filter_number) {
 int FramedSession::most_block_samples() const {
     const std::size_t input = static_cast<std::size_t>(filter_.channels_in) * filter_.input.word_bytes();
     const std::size_t output = static_cast<std::size_t>(filter_.channels_out) * filter_.output.word_bytes();
-    return std::min(greeting_->max_block_samples,
-                    static_cast<int>(message::largest_words_bytes / std::max(input, output)));
+    const auto most = static_cast<std::int64_t>(message::largest_words_bytes);
+    const std::int64_t by_input = most / static_cast<std::int64_t>(input);
+    const std::int64_t by_output = most / (static_cast<std::int64_t>(output) * filter_.up) * filter_.down;
+    return static_cast<int>(std::clamp<std::int64_t>(std::min(by_input, by_output), 1, greeting_->max_block_samples));
+}
+
+std::int64_t FramedSession::most_returned(std::int64_t block_samples) const {
+    return (block_samples + filter_.down - 1) / filter_.down * filter_.up;
 }
 
 Outcome<void> FramedSession::begin_figures() {

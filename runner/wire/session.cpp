@@ -55,8 +55,9 @@ std::size_t FramedSession::frame_bytes_to_board() const {
 }
 
 std::size_t FramedSession::frame_bytes_to_host() const {
-    return largest_frame_bytes(message::response_fixed_bytes +
-                               size_of(block_samples_ * filter_.channels_out) * filter_.output.word_bytes());
+    return largest_frame_bytes(message::response_fixed_bytes + static_cast<std::size_t>(most_returned(block_samples_)) *
+                                                                   size_of(filter_.channels_out) *
+                                                                   filter_.output.word_bytes());
 }
 
 Duration FramedSession::round_trip(std::size_t frames) const {

@@ -21,7 +21,7 @@ public:
     FramedSession(Link& link, const Clock& clock, const WireLimits& limits, std::uint64_t nonce_seed);
 
     Outcome<Greeting> greet() override;
-    Outcome<void> start(std::size_t filter_number) override;
+    Outcome<void> start(std::size_t filter_number, ReturnedCount returned) override;
     std::size_t room_samples() const override;
     void send(std::span<const Code> samples) override;
     void send_reset() override;
@@ -51,6 +51,8 @@ private:
     Outcome<void> discard_stale_input();
     Outcome<message::Bytes> ask(const Question& question, Patience patience);
     Outcome<message::Counters> ask_counters();
+    /// The most samples that come back for a block of so many.
+    std::int64_t most_returned(std::int64_t block_samples) const;
     /// The most samples of a block whose words fit the largest frame (docs/wire.md, section 2.2).
     int most_block_samples() const;
     Outcome<void> await_answers();
@@ -119,7 +121,9 @@ private:
     std::size_t filter_number_ = 0;
     int block_samples_ = 0;
     StreamWindow window_;
-    std::int64_t sent_samples_ = 0, received_samples_ = 0;
+    std::int64_t sent_samples_ = 0, received_samples_ = 0;  ///< sent, and returned
+    ReturnedCount returned_;
+    std::int64_t sent_before_reset_ = 0;
     Received ready_;
     std::int64_t answers_ = 0;
     Instant progress_at_{};  ///< when the oldest frame was answered or sent again, or the first one queued

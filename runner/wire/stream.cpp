@@ -49,6 +49,9 @@ void FramedSession::send(std::span<const Code> samples) {
     frame.type = message::Type::samples;
     frame.at = sent_samples_;
     frame.samples = static_cast<std::int64_t>(count);
+    const auto returned = [this](std::int64_t sent) { return returned_ ? returned_(sent) : sent; };
+    const std::int64_t since_reset = sent_samples_ - sent_before_reset_;
+    frame.returned = returned(since_reset + frame.samples) - returned(since_reset);
     sent_samples_ += frame.samples;
     if (!first_sent_at_) first_sent_at_ = clock_.now();
     queue(frame, body_);
@@ -84,6 +87,7 @@ void FramedSession::send_reset() {
     StreamWindow::Frame& frame = window_.push();
     frame.type = message::Type::reset;
     frame.at = sent_samples_;
+    sent_before_reset_ = sent_samples_;
     frame.samples = 0;
     queue(frame, body_);
 }
@@ -138,7 +142,17 @@ Outcome<void> FramedSession::take_response(message::BytesView body) {
     const StreamWindow::Frame& frame = window_.oldest();
     if (frame.type != message::Type::samples)
         return broken_answer("the board answered " + oldest_name() + " with RESPONSE instead of DONE");
-    const std::size_t words = size_of(frame.samples) * size_of(filter_.channels_out);
+    const std::size_t words = size_of(frame.returned) * size_of(filter_.channels_out);
+    const std::size_t instant_bytes = size_of(filter_.channels_out) * filter_.output.word_bytes();
+    if (frame.returned != frame.samples && response->words.size() % instant_bytes == 0 &&
+        response->words.size() != words * filter_.output.word_bytes()) {
+        return fail(Error{ErrorKind::bench, link_.name(),
+                          "the board answered " + oldest_name() + " with " +
+                              std::to_string(response->words.size() / instant_bytes) +
+                              " samples; the plan's filter returns " + std::to_string(frame.returned) + " for them",
+                          "say in the plan which input of each group a decimator returns with (phase_samples), or "
+                          "correct the firmware: it answers each block with what came of it, docs/wire.md 3"});
+    }
     if (response->words.size() != words * filter_.output.word_bytes())
         return broken_answer("the board answered " + oldest_name() + " with " + std::to_string(response->words.size()) +
                              " bytes of samples; " + std::to_string(words * filter_.output.word_bytes()) +
@@ -148,7 +162,8 @@ Outcome<void> FramedSession::take_response(message::BytesView body) {
     from_wire_bytes(filter_.output, response->words, std::span(ready_.samples).subspan(before));
     ready_.ticks_total += response->ticks_total;
     ready_.ticks_largest = std::max(ready_.ticks_largest, response->ticks_largest);
-    received_samples_ += frame.samples;
+    ready_.answered += frame.samples;
+    received_samples_ += frame.returned;
     advance_window();
     return {};
 }
@@ -206,7 +221,7 @@ void FramedSession::forgive_pause(Instant called_at, Instant left_at, std::size_
 }
 
 Outcome<Received> FramedSession::advance(Instant until) {
-    if (!ready_.samples.empty()) return take_received();
+    if (ready_.answered > 0) return take_received();
     if (error_) return *error_;
     if (!window_.is_open())
         return fail(Error{ErrorKind::defect, link_.name(), "a stream was advanced that is not open", ""});
@@ -239,8 +254,7 @@ WireFigures FramedSession::figures() const {
 }
 
 WireCost FramedSession::cost(std::int64_t samples) const {
-    return wire_cost(samples, block_samples_, size_of(filter_.channels_in) * filter_.input.word_bytes(),
-                     size_of(filter_.channels_out) * filter_.output.word_bytes());
+    return wire_cost(samples, block_samples_, instant_of(filter_));
 }
 
 std::int64_t FramedSession::bytes_to_board(std::int64_t samples) const { return cost(samples).bytes_to_board; }

@@ -18,8 +18,9 @@ class StreamWindow {
 public:
     struct Frame {
         message::Type type = message::Type::samples;
-        std::int64_t at = 0;       ///< sample index that it starts at, or takes effect before
-        std::int64_t samples = 0;  ///< 0 for a command
+        std::int64_t at = 0;        ///< sample index that it starts at, or takes effect before
+        std::int64_t samples = 0;   ///< 0 for a command
+        std::int64_t returned = 0;  ///< how many its answer must have
         std::vector<std::byte> bytes;
     };
 

@@ -3,11 +3,13 @@
 #pragma once
 
 #include <cstdint>
+#include <functional>
 #include <span>
 #include <string>
 #include <string_view>
 #include <vector>
 
+#include "runner/wire/wire_cost.hpp"
 #include "runner/world/clock.hpp"
 #include "stimuli/outcome.hpp"
 #include "stimuli/sample_format.hpp"
@@ -23,7 +25,13 @@ struct BoardFilter {
     SampleFormat input, output;
     int channels_in = 1, channels_out = 1;
     int nodes = 0, tables = 0;
+    /// After `down` instants sent `up` have come back, and the pattern of the rate begins anew; 1 and 1 where it does
+    /// not change.
+    int up = 1, down = 1;
 };
+
+/// What an instant of it takes on the line.
+WireInstant instant_of(const BoardFilter& filter);
 
 struct BoardSetting {
     std::string name;
@@ -43,11 +51,15 @@ struct Greeting {
     int tick_bits = 0;
 };
 
+/// How many instants have come back once so many were sent, counted from start() or the last reset.
+using ReturnedCount = std::function<std::int64_t(std::int64_t sent)>;
+
 /// What one step of the stream brought, in order; samples may be empty.
 struct Received {
-    std::int64_t first_index = 0;  ///< counted from start()
+    std::int64_t first_index = 0;  ///< of the samples returned, counted from start()
     std::vector<Code> samples;
-    std::uint64_t ticks_total = 0;    ///< of these samples
+    std::int64_t answered = 0;        ///< instants sent whose answers these are
+    std::uint64_t ticks_total = 0;    ///< of those answered
     std::uint32_t ticks_largest = 0;  ///< of one sample
 };
 
@@ -76,8 +88,9 @@ class Wire {
 public:
     virtual ~Wire() = default;
     virtual Outcome<Greeting> greet() = 0;
-    /// Opens a stream on that filter of the greeting, from reset, sample index 0.
-    virtual Outcome<void> start(std::size_t filter_number) = 0;
+    /// Opens a stream on that filter of the greeting, from reset, sample index 0. A board that returns another number
+    /// of samples than `returned` says has broken the stream; by default one comes back for each.
+    virtual Outcome<void> start(std::size_t filter_number, ReturnedCount returned = {}) = 0;
     /// A stream on that filter is open and whole, so that a case can go on where the one before ended.
     virtual bool is_streaming(std::size_t filter_number) const = 0;
     /// Waits until everything sent is answered, settings and resets too, and begins figures() and counters() anew:
@@ -93,14 +106,14 @@ public:
     /// Changes a setting of the greeting before the next sample sent; a value outside its range is an Error of the
     /// next advance(). Needs room_samples() > 0.
     virtual void send_setting(std::size_t setting_number, std::int32_t value) = 0;
-    /// Moves bytes until samples arrived (all that are there, in order), or until `until` passes, or
+    /// Moves bytes until answers arrived (all that are there, in order), or until `until` passes, or
     /// until credit came back. Every wait has a deadline: Error kind bench when the board is silent,
     /// refuses, or was restarted; the problem says what was awaited, how long, and what came instead.
     /// With nothing in flight it returns at once. After an Error every call gives that Error.
     virtual Outcome<Received> advance(Instant until) = 0;
     virtual Outcome<BoardCounters> counters() = 0;
     virtual WireFigures figures() const = 0;
-    /// For reports: the most bytes that a stream of so many samples needs in each direction without resends,
+    /// For reports: the most bytes that a stream of so many samples sent needs in each direction without resends,
     /// in blocks as they were granted. Exact while a frame's content is under 254 bytes; above that each zero
     /// byte among the samples may save one (COBS).
     virtual std::int64_t bytes_to_board(std::int64_t samples) const = 0;

@@ -139,7 +139,7 @@ void show_image(Page& page) {
     rig.block_samples = 64;
     rig.answer_s = rig.greet_s = 10.0;
     FirmwareCheck firmware;
-    const auto opened = open_board(rig, Signal{}, Image{"cw7.elf", "3fa2b19c"}, SystemClock(), firmware);
+    const auto opened = open_board(rig, Plan{}, Image{"cw7.elf", "3fa2b19c"}, SystemClock(), firmware);
     page.show("a firmware that is not the image",
               opened ? std::string() : replaced(to_text(opened.error()), {{board.path(), "/dev/pts/3"}}));
 }

@@ -105,7 +105,7 @@ struct RunBench {
         auto greeting = board.wire->greet();
         REQUIRE(greeting);
         board.greeting = *greeting;
-        auto number = agreeing_filter(board.greeting, plan().signal, "fake line");
+        auto number = agreeing_filter(board.greeting, plan().signal, "fake line", rate_cycle_of(plan()));
         REQUIRE(number);
         board.filter_number = *number;
         if (before_cases) before_cases();

@@ -1,6 +1,7 @@
 // A board by docs/wire.md, for tests of the host: written from that page alone, sharing no code with
 // runner/wire or rigs/kit, slow and plain. Its filters pass samples through, sum them up (a sum shows
-// every sample that was lost, repeated or computed twice) or average them, each channel by itself.
+// every sample that was lost, repeated or computed twice) or average them, each channel by itself. One that changes the
+// rate returns with one of each `down` samples, and that one is followed by up - 1 zeros.
 #pragma once
 
 #include <cstdint>
@@ -24,6 +25,7 @@ public:
         Work work = Work::pass;
         int injection = 0, input = 1, output = 1;  ///< bytes of the wire
         int channels_in = 1, channels_out = 1, nodes = 0, tables = 0;
+        int up = 1, down = 1, phase = 0;  ///< the phase is no part of the greeting
     };
     struct Setting {
         std::string name;
@@ -211,6 +213,10 @@ private:
             for (const int value : {filter.injection, filter.input, filter.output, filter.channels_in,
                                     filter.channels_out, filter.nodes, filter.tables})
                 byte(value);
+            if (filter.up != 1 || filter.down != 1) {
+                put(answer, static_cast<std::uint64_t>(filter.up), 2);
+                put(answer, static_cast<std::uint64_t>(filter.down), 2);
+            }
         } else if (page < pages) {
             const Setting& setting = settings[page - 1 - filters.size()];
             text(answer, setting.name);
@@ -305,6 +311,7 @@ private:
 
     void clear() {
         sum_ = 0;
+        since_clear_ = 0;
         past_.assign(static_cast<std::size_t>(filter_.channels_out), {});
     }
 
@@ -318,12 +325,15 @@ private:
         put(answer, 100 * count, 4);
         put(answer, 107, 3);
         for (std::size_t n = 0; n < count; ++n) {
+            const bool returns = since_clear_++ % filter_.down == filter_.phase;
             for (int c = 0; c < filter_.channels_out; ++c) {
                 const std::size_t from =
                     2 + n * instant + static_cast<std::size_t>(c % filter_.channels_in) * in.bytes();
-                const std::int64_t value = in.read(bytes, from) - in.zero();
-                out.write(answer, out.zero() + worked(static_cast<std::size_t>(c), value));
+                const std::int64_t value = worked(static_cast<std::size_t>(c), in.read(bytes, from) - in.zero());
+                if (returns) out.write(answer, out.zero() + value);
             }
+            for (int zero = 0; returns && zero < (filter_.up - 1) * filter_.channels_out; ++zero)
+                out.write(answer, out.zero());
         }
         at_ += count;
         processed_samples += static_cast<std::int64_t>(count);
@@ -355,7 +365,7 @@ private:
     std::optional<std::uint32_t> stream_nonce_;
     Filter filter_;
     std::uint64_t block_ = 0, at_ = 0;
-    std::int64_t sum_ = 0;
+    std::int64_t sum_ = 0, since_clear_ = 0;
     std::vector<std::deque<std::int64_t>> past_;  ///< of each channel, the newest first
     std::vector<Setting> settings_at_power_up_;
     std::uint16_t expected_ = 0;

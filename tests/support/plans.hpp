@@ -6,7 +6,7 @@
 #include <utility>
 #include <vector>
 
-#include "oracle/judge/plan.hpp"
+#include "oracle/judge/case_rates.hpp"
 #include "tests/support/declared.hpp"
 
 namespace halflsb::test {
@@ -61,16 +61,17 @@ inline Case a_case(const Plan& plan, const std::string& shape, const ParameterVa
 inline std::vector<Code> right_response(const Plan& plan, const Case& the_case) {
     const auto length = static_cast<std::size_t>(the_case.stimulus->length_samples());
     const auto channels = static_cast<std::size_t>(plan.signal.channels);
-    std::vector<Code> codes(length * channels), one(length);
-    std::vector<double> in(length), out(length);
-    fill_case_codes(plan, the_case, 0, codes);
+    const auto returned = static_cast<std::size_t>(returned_samples(plan, the_case));
+    std::vector<Code> sent(length * channels), codes(returned * channels), one(length);
+    std::vector<double> in(length), out(returned);
+    fill_case_codes(plan, the_case, 0, sent);
     for (std::size_t c = 0; c < channels; ++c) {
-        for (std::size_t n = 0; n < length; ++n) one[n] = codes[n * channels + c];
+        for (std::size_t n = 0; n < length; ++n) one[n] = sent[n * channels + c];
         values_of(plan.signal.input, one, in);
         declared_filter(chain_of(plan, the_case, static_cast<int>(c) + 1), plan.signal.input, plan.signal.output,
                         plan.signal.output_per_input)
             ->process(in, out);
-        for (std::size_t n = 0; n < length; ++n)
+        for (std::size_t n = 0; n < returned; ++n)
             codes[n * channels + c] = code_of(plan.signal.output, out[n], Rounding::half_up);
     }
     return codes;

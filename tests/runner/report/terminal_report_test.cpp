@@ -124,7 +124,7 @@ TEST_CASE("report: an invalid case says what was awaited and what came instead",
           "  /dev/ttyUSB0: waited 2 s for block 17, nothing came; the last was block 16,\n"
           "  0.4 s before\n"
           "    check the cable and the board's supply\n"
-          "  capture broken: 1024 of 2048 samples sent came back; 2 bad frames here, 3\n"
+          "  capture broken: 2048 samples sent, 1024 came back; 2 bad frames here, 3\n"
           "  resends; the board could not be asked for its counters\n"
           "  rerun: halflsb check cw7.toml --rig bench.toml --case 'belt start'\n");
 }

@@ -28,10 +28,10 @@ struct Bench {
         if (!wire) wire = make_framed_wire(link, clock, limits, 99);
         return *wire;
     }
-    Outcome<void> open(std::size_t filter) {
+    Outcome<void> open(std::size_t filter, ReturnedCount returned = {}) {
         const Outcome<Greeting> greeting = session().greet();
         if (!greeting) return greeting.error();
-        return session().start(filter);
+        return session().start(filter, std::move(returned));
     }
 };
 
@@ -48,7 +48,7 @@ struct Streamed {
 inline Streamed stream(Wire& wire, std::int64_t count, const Clock& clock, const std::vector<std::int64_t>& resets = {},
                        bool keeps = true) {
     Streamed result;
-    std::int64_t sent = 0, received = 0;
+    std::int64_t sent = 0, received = 0, returned = 0;
     std::size_t next_reset = 0;
     std::vector<Code> block;
     while (received < count && !result.error) {
@@ -71,8 +71,9 @@ inline Streamed stream(Wire& wire, std::int64_t count, const Clock& clock, const
             result.error = step.error();
             break;
         }
-        result.is_in_order = result.is_in_order && step->first_index == received;
-        received += static_cast<std::int64_t>(step->samples.size());
+        result.is_in_order = result.is_in_order && step->first_index == returned;
+        returned += static_cast<std::int64_t>(step->samples.size());
+        received += step->answered;
         if (keeps) result.samples.insert(result.samples.end(), step->samples.begin(), step->samples.end());
         result.ticks_total += step->ticks_total;
         result.ticks_largest = std::max(result.ticks_largest, step->ticks_largest);
