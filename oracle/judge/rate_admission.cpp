@@ -35,7 +35,7 @@ void check_rate(const Plan& plan, const Case& the_case, std::vector<Refusal>& re
         refuse(" sends " + std::to_string(length) + " samples, and its filter, which returns " +
                    std::to_string(rates.cycle().outputs) + " for " + std::to_string(cycle) + ", needs a multiple of " +
                    std::to_string(cycle),
-               "send " + std::to_string(multiple_of(length)));
+               "send " + std::to_string(multiple_of(length)) + " samples");
     }
     if (the_case.start == Start::running && the_case.start_samples % cycle != 0) {
         refuse(" discards " + std::to_string(the_case.start_samples) + " samples, and its filter, which returns " +

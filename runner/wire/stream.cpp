@@ -146,10 +146,11 @@ Outcome<void> FramedSession::take_response(message::BytesView body) {
     const std::size_t instant_bytes = size_of(filter_.channels_out) * filter_.output.word_bytes();
     if (frame.returned != frame.samples && response->words.size() % instant_bytes == 0 &&
         response->words.size() != words * filter_.output.word_bytes()) {
+        const std::size_t came = response->words.size() / instant_bytes;
         return fail(Error{ErrorKind::bench, link_.name(),
-                          "the board answered " + oldest_name() + " with " +
-                              std::to_string(response->words.size() / instant_bytes) +
-                              " samples; the plan's filter returns " + std::to_string(frame.returned) + " for them",
+                          "the board answered " + oldest_name() + " with " + std::to_string(came) +
+                              (came == 1 ? " sample" : " samples") + "; the plan's filter returns " +
+                              std::to_string(frame.returned) + " for them",
                           "say in the plan which input of each group a decimator returns with (phase_samples), or "
                           "correct the firmware: it answers each block with what came of it, docs/wire.md 3"});
     }

@@ -88,6 +88,7 @@ const std::vector<Body> not_exact = {
     {"exact, and the rounding is not said", fir, "coefficient_fraction_bits = 15\n"},
     {"exact, and the words between stages are not said", fir,
      "coefficient_fraction_bits = 15\nrounding = \"floor\"\n[[filter]]\n" + median},
+    {"exact, and a CIC in float32", "kind = \"cic-decimator\"\norder = 4\nfactor = 4\n", "", "f32"},
     {"exact, and no start from zeros", fir + "initial = \"first-sample\"\n",
      "coefficient_fraction_bits = 15\nrounding = \"floor\"\n"},
 };
@@ -127,26 +128,6 @@ void show_rules(Page& page) {
     show_plan(page, "a derived limit that has no end", parts.text());
 }
 
-/// A plan that changes the rate has no rules about samples, so no rule comes to ask for its twin.
-void show_descriptions(Page& page) {
-    ParameterValues values, arithmetic;
-    values.set("order", std::int64_t{4});
-    values.set("factor", std::int64_t{25});
-    auto stage = make_stage("cic-decimator", values, {1200.0, {}, 1});
-    if (!stage) {
-        page.show("a cic", stage);
-        return;
-    }
-    stage->arithmetic.number = NumberKind::float32;
-    const SampleFormat format = *sample_format("f32");
-    const auto result = describe({*stage}, format, format, 1.0);
-    if (!result.described || !result.described->missing) {
-        page.missing("a cic in float32");
-        return;
-    }
-    page.show("a cic in float32", result.described->missing->error);
-}
-
 }  // namespace
 
 void arithmetic_chapter(Page& page) {
@@ -155,8 +136,6 @@ void arithmetic_chapter(Page& page) {
     for (const Body& body : contradictory) show_plan(page, body.done, plan_with(body).text());
     page.chapter("What a rule needs of the arithmetic");
     show_rules(page);
-    page.chapter("The arithmetic, described without a plan");
-    show_descriptions(page);
 }
 
 }  // namespace halflsb::diagnostics

@@ -20,6 +20,7 @@ int main() {
     design_chapter(page);
     coefficient_file_chapter(page);
     rule_chapter(page);
+    rate_chapter(page);
     baseline_chapter(page);
     rig_chapter(page);
     file_chapter(page);

@@ -52,6 +52,7 @@ void arithmetic_chapter(Page& page);
 void design_chapter(Page& page);
 void coefficient_file_chapter(Page& page);
 void rule_chapter(Page& page);
+void rate_chapter(Page& page);
 void baseline_chapter(Page& page);
 void rig_chapter(Page& page);
 void file_chapter(Page& page);

@@ -156,9 +156,9 @@ TEST_CASE("rates: what is sent and discarded are whole cycles", "[judge]") {
         return found.empty() ? "" : found[0].problem + "; " + found[0].remedy;
     };
     Case the_case = test::a_case(plan, "noise", noise_of(1001), rules_of(plan));
-    CHECK(
-        refused(the_case) ==
-        "case \"a case\" sends 1001 samples, and its filter, which returns 3 for 2, needs a multiple of 2; send 1002");
+    CHECK(refused(the_case) ==
+          "case \"a case\" sends 1001 samples, and its filter, which returns 3 for 2, needs a multiple of 2; send "
+          "1002 samples");
     the_case = test::a_case(plan, "noise", noise_of(1000), rules_of(plan));
     CHECK(refused(the_case) == "");
     the_case.start = Start::running;

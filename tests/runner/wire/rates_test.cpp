@@ -75,7 +75,7 @@ TEST_CASE("rates: a board that returns with another input of the group has broke
     REQUIRE(streamed.error);
     CHECK(streamed.error->kind == ErrorKind::bench);
     CHECK(streamed.error->problem ==
-          "the board answered block 0 (samples 0 to 5) with 1 samples; the plan's filter returns 2 for them");
+          "the board answered block 0 (samples 0 to 5) with 1 sample; the plan's filter returns 2 for them");
     CHECK(
         streamed.error->remedy ==
         "say in the plan which input of each group a decimator returns with (phase_samples), or correct the firmware: "
