@@ -10,12 +10,14 @@ namespace halflsb {
 
 void check_rate(const Plan& plan, const Case& the_case, std::vector<Refusal>& refusals) {
     if (plan.filter_is_unknown) return;
-    const auto refuse = [&](const std::string& problem, const std::string& remedy) {
-        refusals.push_back({the_case.position, "case \"" + the_case.name + "\"" + problem, remedy});
+    const auto refuse = [&](const std::string& problem, const std::string& remedy, const PlanPosition& position) {
+        refusals.push_back(
+            {position.line > 0 ? position : the_case.position, "case \"" + the_case.name + "\"" + problem, remedy});
     };
     if (!same_rates(plan, the_case)) {
         refuse(": its channels change the sample rate in different ways, and the samples of an instant travel together",
-               "give every channel the same decimators and interpolators, or test the channels in plans of their own");
+               "give every channel the same decimators and interpolators, or test the channels in plans of their own",
+               the_case.position);
         return;
     }
     const CaseRates rates(plan, the_case);
@@ -24,7 +26,7 @@ void check_rate(const Plan& plan, const Case& the_case, std::vector<Refusal>& re
     if (longer > longest_rate_cycle_samples) {
         refuse(": its filter begins anew only every " + std::to_string(longer) + " samples, " +
                    std::to_string(longest_rate_cycle_samples) + " are possible",
-               "let the board return a signal from before its last change of the rate");
+               "let the board return a signal from before its last change of the rate", the_case.position);
         return;
     }
     const auto multiple_of = [&](std::int64_t samples) {
@@ -35,13 +37,13 @@ void check_rate(const Plan& plan, const Case& the_case, std::vector<Refusal>& re
         refuse(" sends " + std::to_string(length) + " samples, and its filter, which returns " +
                    std::to_string(rates.cycle().outputs) + " for " + std::to_string(cycle) + ", needs a multiple of " +
                    std::to_string(cycle),
-               "send " + std::to_string(multiple_of(length)) + " samples");
+               "send " + std::to_string(multiple_of(length)) + " samples", the_case.length_position);
     }
     if (the_case.start == Start::running && the_case.start_samples % cycle != 0) {
         refuse(" discards " + std::to_string(the_case.start_samples) + " samples, and its filter, which returns " +
                    std::to_string(rates.cycle().outputs) + " for " + std::to_string(cycle) + ", needs a multiple of " +
                    std::to_string(cycle),
-               "discard_samples = " + std::to_string(multiple_of(the_case.start_samples)));
+               "discard_samples = " + std::to_string(multiple_of(the_case.start_samples)), the_case.discard_position);
     }
 }
 

@@ -87,7 +87,8 @@ Start start_from(std::string_view word) {
 }
 
 /// `start` and `discard_samples` against each other and the length of the stimulus.
-void read_start(TableReader& reader, const ParameterValues& values, const Stimulus* stimulus, Case& the_case) {
+void read_start(TableReader& reader, const ParameterValues& values, const Stimulus* stimulus,
+                const PlanPosition& discard_position, Case& the_case) {
     const Recipe& recipe = case_recipe();
     // One of a wrong word was reported, and contradicts nothing.
     const auto was_refused = [&](std::string_view key) { return reader.entry(key) != nullptr && !values.has(key); };
@@ -112,6 +113,7 @@ void read_start(TableReader& reader, const ParameterValues& values, const Stimul
         return;
     }
     the_case.start_samples = *discard;
+    the_case.discard_position = discard_position;
     if (stimulus != nullptr && !(*discard < stimulus->length_samples())) {
         reader.refuse(reader.place_of("discard_samples"),
                       "discard_samples = " + std::to_string(*discard) + " leaves nothing of " +
@@ -185,11 +187,14 @@ public:
         context_.nyquist_hz = nyquist_hz;
 
         if (stimulus_table != nullptr) refuse_stimulus_after_rule(reader_, *stimulus_table, rules);
-        read_start(reader_, values, stimulus ? stimulus->stimulus.get() : nullptr, the_case);
+        read_start(reader_, values, stimulus ? stimulus->stimulus.get() : nullptr,
+                   context_.position_of(reader_.place_of("discard_samples")), the_case);
         read_filter_at(reader_, facts_, rate_hz, the_case);
         reader_.refuse_unknown_keys();
         read_.is_clean = reader_.is_clean() && stimulus && rules.is_clean;
         if (!read_.is_clean) return std::move(read_);
+        const TomlEntry* length = stimulus_table->find("length_samples");
+        the_case.length_position = context_.position_of(length != nullptr ? length->key_place : stimulus_table->place);
         the_case.shape = stimulus->shape;
         the_case.channel = stimulus->channel;
         the_case.stimulus_values = std::move(stimulus->values);
