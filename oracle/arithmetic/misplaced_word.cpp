@@ -14,25 +14,6 @@ bool is_one_of(std::string_view word, const std::vector<std::string_view>& words
     return std::find(words.begin(), words.end(), word) != words.end();
 }
 
-bool has_word(const FilterStage& stage, std::string_view word) {
-    const Family family = family_of(stage);
-    const bool has_products = family != Family::average && family != Family::median && family != Family::cic;
-    const bool has_states = has_products && family != Family::fir;
-    if (family == Family::cic && (word == "state_bits" || word == "state_overflow")) return true;
-    if (family == Family::median || family == Family::cic)
-        return is_one_of(word, {"number", "rounding", "output_overflow", "stage_format"});
-    if (is_one_of(word, {"state_bits", "state_fraction_bits", "state_overflow", "output_rounding"})) return has_states;
-    if (word == "feedback_coefficients")
-        return family == Family::sections || family == Family::recursion || family == Family::comb;
-    if (word == "division") return family == Family::average;
-    if (word == "summation")
-        return family == Family::fir || (family == Family::average && structure_of(stage) == Structure::fresh_sum);
-    if (word == "rounding_at") return has_products && family != Family::one_pole;
-    if (is_one_of(word, {"coefficient_bits", "coefficient_rounding"}))
-        return !is_by_shift(stage) && (family != Family::average || stage.arithmetic.division == Division::reciprocal);
-    return true;
-}
-
 /// What a stage is that lacks the word, and what else would have it.
 struct Lacking {
     std::string_view stage, remedy;
@@ -64,6 +45,25 @@ const std::vector<std::string_view> words_of_integers{
     "feedback_coefficients"};
 
 }  // namespace
+
+bool has_word(const FilterStage& stage, std::string_view word) {
+    const Family family = family_of(stage);
+    const bool has_products = family != Family::average && family != Family::median && family != Family::cic;
+    const bool has_states = has_products && family != Family::fir;
+    if (family == Family::cic && (word == "state_bits" || word == "state_overflow")) return true;
+    if (family == Family::median || family == Family::cic)
+        return is_one_of(word, {"number", "rounding", "output_overflow", "stage_format"});
+    if (is_one_of(word, {"state_bits", "state_fraction_bits", "state_overflow", "output_rounding"})) return has_states;
+    if (word == "feedback_coefficients")
+        return family == Family::sections || family == Family::recursion || family == Family::comb;
+    if (word == "division") return family == Family::average;
+    if (word == "summation")
+        return family == Family::fir || (family == Family::average && structure_of(stage) == Structure::fresh_sum);
+    if (word == "rounding_at") return has_products && family != Family::one_pole;
+    if (is_one_of(word, {"coefficient_bits", "coefficient_rounding"}))
+        return !is_by_shift(stage) && (family != Family::average || stage.arithmetic.division == Division::reciprocal);
+    return true;
+}
 
 std::optional<Error> misplaced_word(const FilterStage& stage, const ParameterValues& own) {
     const Family family = family_of(stage);

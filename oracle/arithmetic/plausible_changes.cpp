@@ -37,7 +37,8 @@ public:
 private:
     const StageArithmetic& said() const { return chain_[stage_].arithmetic; }
     Family family() const { return family_of(chain_[stage_]); }
-    bool has_states() const { return family() != Family::fir && family() != Family::average; }
+    bool has(std::string_view word) const { return has_word(chain_[stage_], word); }
+    bool feeds_back() const { return has("state_bits") && family() != Family::cic; }
 
     void add(std::string name, const StageArithmetic& arithmetic) {
         FilterChain changed = chain_;
@@ -56,19 +57,20 @@ private:
             if (changed.output_rounding == declared_->rounding) changed.output_rounding = other;
             add(std::string(name) + " in place of " + std::string(name_of(declared_->rounding)), changed);
         }
-        if (family() != Family::average && family() != Family::one_pole &&
-            declared_->rounding_at != RoundingAt::product) {
+        if (has("rounding_at") && declared_->rounding_at != RoundingAt::product) {
             StageArithmetic changed = said();
             changed.rounding_at = RoundingAt::product;
             changed.fraction_saving = false;
             add("each product shortened before it is added", changed);
         }
+        if (!has("fraction_saving")) return;
         StageArithmetic changed = said();
         changed.fraction_saving = !declared_->fraction_saving;
         add(declared_->fraction_saving ? "no fraction saved" : "the fraction saved", changed);
     }
 
     void widths() {
+        if (!has("accumulator_bits")) return;
         for (const int bits : usual_widths) {
             if (bits >= declared_->accumulator_bits) continue;
             StageArithmetic changed = said();
@@ -84,13 +86,13 @@ private:
         changed.state_overflow = declared_->state.overflow;
         if (declared_->state == declared_->out.word) changed.state_overflow = changed.output_overflow;
         add(wraps ? "an output that saturates" : "an output that wraps", changed);
-        if (declared_->accumulator_bits < wide_bits) {
+        if (has("accumulator_overflow") && declared_->accumulator_bits < wide_bits) {
             changed = said();
             const bool sum_wraps = declared_->accumulator_overflow == Overflow::wrap;
             changed.accumulator_overflow = sum_wraps ? Overflow::saturate : Overflow::wrap;
             add(sum_wraps ? "an accumulator that saturates" : "an accumulator that wraps", changed);
         }
-        const bool is_narrow = has_states() && declared_->structure != Structure::transposed_2 &&
+        const bool is_narrow = feeds_back() && declared_->structure != Structure::transposed_2 &&
                                declared_->state.bits == declared_->out.word.bits && declared_->state.bits < 32;
         if (!is_narrow) return;
         changed = said();
@@ -118,6 +120,7 @@ private:
     }
 
     void floats() {
+        if (!has("multiply_add")) return;
         StageArithmetic changed = said();
         changed.fused_multiply_add = !declared_->fused;
         add(declared_->fused ? "products rounded before they are added" : "fused multiply-adds", changed);
