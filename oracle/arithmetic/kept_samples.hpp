@@ -5,12 +5,11 @@
 
 namespace halflsb {
 
-/// The first sample and each factor-th after it.
 class KeptSamples {
 public:
-    explicit KeptSamples(std::size_t factor) : factor_(factor) {}
+    explicit KeptSamples(Kept kept) : factor_(kept.each), first_(kept.first), until_next_(kept.first) {}
 
-    void reset() { until_next_ = 0; }
+    void reset() { until_next_ = first_; }
     std::size_t count_of(std::size_t inputs) const {
         return inputs <= until_next_ ? 0 : (inputs - until_next_ - 1) / factor_ + 1;
     }
@@ -33,8 +32,7 @@ public:
     }
 
 private:
-    std::size_t factor_;
-    std::size_t until_next_ = 0;
+    std::size_t factor_, first_, until_next_;
 };
 
 /// factor - 1 zeros behind each sample: 0 as a word and as bits of a float32.

@@ -61,7 +61,7 @@ public:
             for (std::size_t j = k + 1; j < elements.size(); ++j) {
                 behind.insert(behind.end(), elements[j].exact.begin(), elements[j].exact.end());
             }
-            behind_.push_back(rate_ratio(behind));
+            behind_.push_back(std::move(behind));
             input = elements_.back().output();
             if (elements_.back().is_watched()) watched_ = elements_.size();
             const auto& nodes = elements_.back().nodes();
@@ -114,7 +114,7 @@ private:
             if (reached_[n] == 0) continue;
             const RailNode& node = elements_[k].nodes()[reached_[n] - 1U];
             // The first output of the chain that can have met this one of the element.
-            const std::int64_t index = (indices_[k] + static_cast<std::int64_t>(n)) * behind_[k].up / behind_[k].down;
+            const std::int64_t index = outputs_after(behind_[k], indices_[k] + static_cast<std::int64_t>(n));
             clip_ = std::min(clip_.value_or(index), index);
             if (node.effect == RailEffect::clip) continue;
             if (!unsafe_ || index < *unsafe_) {
@@ -144,7 +144,7 @@ private:
     const DescribedChain chain_;  ///< the elements point into it
     std::vector<RailElement> elements_;
     std::vector<std::int64_t> memory_;
-    std::vector<RateRatio> behind_;      ///< from each element's output to that of the chain
+    std::vector<FilterChain> behind_;    ///< from each element's output to that of the chain
     std::vector<std::int64_t> indices_;  ///< of the next output of each element
     bool changes_rate_ = false;
     std::size_t watched_ = 0;  ///< elements up to the last one that has a rail to watch

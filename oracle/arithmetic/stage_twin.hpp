@@ -36,11 +36,15 @@ struct Recurrence {
     bool is_one_pole = false;  ///< the firmware stores b0 alone
 };
 
+/// Which samples of its input a decimator computes: `first`, counted from 0, and each `each`-th after it.
+struct Kept {
+    std::size_t each = 1, first = 0;
+};
+
 // `name` is put before the names of the nodes, "stage 1, ". Of integer stages, but for the median:
 
-/// Computed for the first sample and each keeps_each-th after it.
-std::unique_ptr<StageTwin> make_fir_twin(const DescribedStage& stage, const std::vector<double>& taps,
-                                         std::size_t keeps_each, const std::string& name);
+std::unique_ptr<StageTwin> make_fir_twin(const DescribedStage& stage, const std::vector<double>& taps, Kept kept,
+                                         const std::string& name);
 std::unique_ptr<StageTwin> make_comb_twin(const DescribedStage& stage, const std::string& name);
 std::unique_ptr<StageTwin> make_moving_average_twin(const DescribedStage& stage, const std::string& name);
 std::unique_ptr<StageTwin> make_one_pole_twin(const DescribedStage& stage, const std::string& name);
@@ -57,8 +61,8 @@ std::unique_ptr<StageTwin> make_cic_twin(const DescribedStage& stage, const std:
 std::unique_ptr<StageTwin> make_median_twin(const DescribedStage& stage, const std::string& name);
 
 // Of float32 stages.
-std::unique_ptr<StageTwin> make_float_fir_twin(const DescribedStage& stage, const std::vector<double>& taps,
-                                               std::size_t keeps_each, const std::string& name);
+std::unique_ptr<StageTwin> make_float_fir_twin(const DescribedStage& stage, const std::vector<double>& taps, Kept kept,
+                                               const std::string& name);
 std::unique_ptr<StageTwin> make_float_comb_twin(const DescribedStage& stage, const std::string& name);
 std::unique_ptr<StageTwin> make_float_average_twin(const DescribedStage& stage, const std::string& name);
 /// Its coefficients as stored: multiples of 2^-f where the stage says f.

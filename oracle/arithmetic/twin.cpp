@@ -117,11 +117,13 @@ public:
     void operator()(const Median&) { add(make_median_twin); }
     void operator()(const CicDecimator&) { add_cic(); }
     void operator()(const CicInterpolator&) { add_cic(); }
-    void operator()(const Fir& fir) { add_fir(fir.taps, 1); }
-    void operator()(const FirDecimator& fir) { add_fir(fir.taps, static_cast<std::size_t>(fir.factor)); }
+    void operator()(const Fir& fir) { add_fir(fir.taps, {}); }
+    void operator()(const FirDecimator& fir) {
+        add_fir(fir.taps, {static_cast<std::size_t>(fir.factor), static_cast<std::size_t>(fir.phase_samples)});
+    }
     void operator()(const FirInterpolator& fir) {
         twins_.push_back(std::make_unique<ZeroStuffing>(static_cast<std::size_t>(fir.factor)));
-        add_fir(fir.taps, 1);
+        add_fir(fir.taps, {});
     }
     void operator()(const Recursion& recursion) {
         twins_.push_back(make_section(stage_, recurrence_of(recursion), name_));
@@ -146,8 +148,8 @@ private:
     void add(std::unique_ptr<StageTwin> (*make)(const DescribedStage&, const std::string&)) {
         twins_.push_back(make(stage_, name_));
     }
-    void add_fir(const std::vector<double>& taps, std::size_t keeps_each) {
-        twins_.push_back((is_float_ ? make_float_fir_twin : make_fir_twin)(stage_, taps, keeps_each, name_));
+    void add_fir(const std::vector<double>& taps, Kept kept) {
+        twins_.push_back((is_float_ ? make_float_fir_twin : make_fir_twin)(stage_, taps, kept, name_));
     }
     // What integrators in float32 lose no comb brings back: there is no twin of that.
     void add_cic() { twins_.push_back(is_float_ ? nullptr : make_cic_twin(stage_, name_)); }

@@ -15,6 +15,7 @@ namespace {
 struct CicPlan {
     std::size_t order = 1, factor = 2, delay = 1;
     bool decimates = true;
+    std::size_t phase = 0;  ///< of what decimates
     Word registers;
 };
 
@@ -26,7 +27,7 @@ public:
           output_(name + "output", out),
           integrals_(plan.order, 0),
           past_(plan.order, History<std::int64_t>(plan.delay)),
-          kept_(plan.factor) {
+          kept_({plan.factor, plan.phase}) {
         for (std::size_t k = 1; k <= plan.order; ++k) {
             integrators_.emplace_back(name + "integrator " + std::to_string(k), plan.registers);
             combs_.emplace_back(name + "comb " + std::to_string(k), plan.registers);
@@ -127,8 +128,12 @@ template <class Cic>
 std::unique_ptr<StageTwin> make(const DescribedStage& stage, const Cic& design, bool decimates,
                                 const std::string& name) {
     const int integer_bits = stage.in.word.bits + growth_bits(design);
-    CicPlan plan{static_cast<std::size_t>(design.order), static_cast<std::size_t>(design.factor),
-                 static_cast<std::size_t>(design.delay_samples), decimates, stage.state};
+    CicPlan plan{static_cast<std::size_t>(design.order),
+                 static_cast<std::size_t>(design.factor),
+                 static_cast<std::size_t>(design.delay_samples),
+                 decimates,
+                 static_cast<std::size_t>(phase_samples_of(design)),
+                 stage.state};
     // Saturation never comes where nobody limited the registers.
     if (stage.state.bits == wide_bits) plan.registers = {integer_bits, stage.in.word.fraction_bits, Overflow::wrap};
     if (plan.registers.bits > 64) return nullptr;

@@ -19,7 +19,7 @@ struct DirectPlan {
     bool has_state = false;                      ///< results go to state words first
     Word out;
     Rounding output_rounding = Rounding::floor;
-    std::size_t keeps_each = 1;  ///< of a decimator that has no state: its factor
+    Kept kept = {};  ///< of a decimator; it has no state
 };
 
 template <class Sum>
@@ -33,7 +33,7 @@ public:
           output_(name + "output", plan.out),
           inputs_(deepest(plan.forward) + 1),
           states_(deepest(plan.feedback)),
-          kept_(plan.keeps_each) {
+          kept_(plan.kept) {
         for (const DelayedTerm& each : plan.forward) forward_.emplace_back(each, plan.sum);
         for (const DelayedTerm& each : plan.feedback) feedback_.emplace_back(each, plan.sum);
         for (const auto* taps : {&forward_, &feedback_}) {
@@ -175,14 +175,14 @@ std::unique_ptr<StageTwin> make(const DescribedStage& stage, DirectPlan plan, co
 
 }  // namespace
 
-std::unique_ptr<StageTwin> make_fir_twin(const DescribedStage& stage, const std::vector<double>& taps,
-                                         std::size_t keeps_each, const std::string& name) {
+std::unique_ptr<StageTwin> make_fir_twin(const DescribedStage& stage, const std::vector<double>& taps, Kept kept,
+                                         const std::string& name) {
     DirectPlan plan;
     for (std::size_t k = 0; k < taps.size(); ++k) {
         plan.forward.push_back({forward_term(stage, taps[k], stage.in.word), k});
     }
     if (stage.summation == Summation::oldest_first) std::reverse(plan.forward.begin(), plan.forward.end());
-    plan.keeps_each = keeps_each;
+    plan.kept = kept;
     return make(stage, std::move(plan), name);
 }
 

@@ -25,11 +25,8 @@ struct FloatTap {
 /// What all have: the ends, and a fixed list of float32 that is their state.
 class FloatStage : public StageTwin {
 public:
-    FloatStage(const DescribedStage& stage, const std::string& name, std::size_t keeps_each = 1)
-        : input_(stage.in),
-          output_(stage.out, stage.rounding, name + "output"),
-          fused_(stage.fused),
-          kept_(keeps_each) {}
+    FloatStage(const DescribedStage& stage, const std::string& name, Kept kept = {})
+        : input_(stage.in), output_(stage.out, stage.rounding, name + "output"), fused_(stage.fused), kept_(kept) {}
 
     void reset() override {
         output_.reset();
@@ -109,9 +106,9 @@ std::vector<float> newest_first(const History<float>& history, std::size_t count
 /// fir, comb, and sections in direct form I.
 class FloatDirect final : public FloatStage {
 public:
-    FloatDirect(const DescribedStage& stage, std::vector<FloatTap> forward, std::vector<FloatTap> feedback,
-                std::size_t keeps_each, const std::string& name)
-        : FloatStage(stage, name, keeps_each),
+    FloatDirect(const DescribedStage& stage, std::vector<FloatTap> forward, std::vector<FloatTap> feedback, Kept kept,
+                const std::string& name)
+        : FloatStage(stage, name, kept),
           forward_(std::move(forward)),
           feedback_(std::move(feedback)),
           inputs_(deepest(forward_) + 1),
@@ -310,15 +307,15 @@ std::unique_ptr<StageTwin> make_float_section_twin(const DescribedStage& stage, 
         case Structure::leak:
             return std::make_unique<FloatOnePole>(stage, forward.front(), name);
         default:
-            return std::make_unique<FloatDirect>(stage, in_a_row(forward, 0), in_a_row(feedback, 1), 1, name);
+            return std::make_unique<FloatDirect>(stage, in_a_row(forward, 0), in_a_row(feedback, 1), Kept{}, name);
     }
 }
 
-std::unique_ptr<StageTwin> make_float_fir_twin(const DescribedStage& stage, const std::vector<double>& taps,
-                                               std::size_t keeps_each, const std::string& name) {
+std::unique_ptr<StageTwin> make_float_fir_twin(const DescribedStage& stage, const std::vector<double>& taps, Kept kept,
+                                               const std::string& name) {
     std::vector<FloatTap> forward = in_a_row(in_float(taps, 1.0), 0);
     if (stage.summation == Summation::oldest_first) std::reverse(forward.begin(), forward.end());
-    return std::make_unique<FloatDirect>(stage, std::move(forward), std::vector<FloatTap>{}, keeps_each, name);
+    return std::make_unique<FloatDirect>(stage, std::move(forward), std::vector<FloatTap>{}, kept, name);
 }
 
 std::unique_ptr<StageTwin> make_float_comb_twin(const DescribedStage& stage, const std::string& name) {
@@ -327,7 +324,7 @@ std::unique_ptr<StageTwin> make_float_comb_twin(const DescribedStage& stage, con
     const std::vector<float> forward = in_float({comb.direct, comb.forward}, 1.0);
     const std::vector<float> feedback = in_float({comb.feedback}, -1.0);
     return std::make_unique<FloatDirect>(stage, std::vector<FloatTap>{{forward[0], 0}, {forward[1], delay}},
-                                         std::vector<FloatTap>{{feedback[0], delay}}, 1, name);
+                                         std::vector<FloatTap>{{feedback[0], delay}}, Kept{}, name);
 }
 
 std::unique_ptr<StageTwin> make_float_average_twin(const DescribedStage& stage, const std::string& name) {

@@ -28,11 +28,15 @@ double divisor_of(const CicInterpolator& design) {
 }
 
 CicDecimatorFilter::CicDecimatorFilter(const CicDecimator& design)
-    : factor_(static_cast<std::size_t>(design.factor)), divisor_(divisor_of(design)), sums_(sums_of(design)) {}
+    : factor_(static_cast<std::size_t>(design.factor)),
+      phase_(static_cast<std::size_t>(design.phase_samples)),
+      divisor_(divisor_of(design)),
+      sums_(sums_of(design)),
+      until_output_(phase_) {}
 
 void CicDecimatorFilter::reset() {
     for (MovingSum& sum : sums_) sum.reset();
-    until_output_ = 0;
+    until_output_ = phase_;
 }
 
 std::size_t CicDecimatorFilter::outputs_for(std::size_t inputs) const {

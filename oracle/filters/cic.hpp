@@ -22,10 +22,10 @@ public:
     void process(std::span<const double> in, std::span<double> out) override;
 
 private:
-    std::size_t factor_;
+    std::size_t factor_, phase_;
     double divisor_;
     std::vector<MovingSum> sums_;
-    std::size_t until_output_ = 0;  ///< inputs that come before the one that gives the next output
+    std::size_t until_output_;  ///< inputs that come before the one that gives the next output
     std::vector<double> scratch_;
 };
 

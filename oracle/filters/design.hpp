@@ -4,8 +4,9 @@
 // unless the stage says otherwise (Initial in filter.hpp).
 //
 // Kinds that change the rate. A decimator of R returns, as its output m, what the filter at the rate of its input
-// returns at input index m R: the first input gives the first output. An interpolator of R puts R - 1 zeros behind
-// each input and filters at the higher rate: input n comes out from output n R on.
+// returns at input index m R + phase_samples, phase_samples 0 .. R - 1: 0 returns with the first input of each R, R - 1
+// waits for the last. An interpolator of R puts R - 1 zeros behind each input and filters at the higher rate: input n
+// comes out from output n R on.
 #pragma once
 
 #include <optional>
@@ -56,6 +57,7 @@ struct Median {
 struct CicDecimator {
     int order = 1, factor = 2, delay_samples = 1;
     std::optional<int> shift_bits = {};
+    int phase_samples = 0;
 };
 
 /// R - 1 zeros behind each input, then N moving sums of R M samples. The gain R^(N-1) M^N at zero frequency is divided
@@ -65,10 +67,12 @@ struct CicInterpolator {
     std::optional<int> shift_bits = {};
 };
 
-/// y[m] = sum taps[k] x[m factor - k]. Fewer taps than factor are taken: one tap of 1 keeps each factor-th sample.
+/// y[m] = sum taps[k] x[m factor + phase_samples - k]. Fewer taps than factor are taken: one tap of 1 keeps each
+/// factor-th sample.
 struct FirDecimator {
     std::vector<double> taps;
     int factor = 2;
+    int phase_samples = 0;
 };
 
 /// y[m] = sum taps[k] u[m-k], u the input with factor - 1 zeros behind each sample. The taps are used as they are: the

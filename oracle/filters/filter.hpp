@@ -85,12 +85,13 @@ bool is_linear(const FilterChain& chain);
 
 /// Closed form of the frequency response at cycles_per_sample (0 .. 0.5) of the input, evaluated section by section.
 /// Where the rate changes: the complex gain from e^(j 2 pi f n) to its image of the same frequency in Hz at the output,
-/// output m at the time of its input index m down / up (rates.hpp). Each stage is evaluated at its own rate; an
+/// output m at the time of its input index m down / up (rates.hpp), so a decimator's phase_samples are a factor
+/// e^(j 2 pi f phase_samples), f at its input. Each stage is evaluated at its own rate; an
 /// interpolator of R counts as its filter over R, the share of the base image. Above half the output rate that image
 /// stands at its alias, and the gain is what comes through there. Not a number for a chain that is not linear.
 std::complex<double> response_at(const FilterChain& chain, double cycles_per_sample);
 /// What the chain returns for a 1 and then zeros, `length` outputs. Of a decimator that is each factor-th value of the
-/// response of its filter.
+/// response of its filter, from that of its phase_samples on.
 std::vector<double> impulse_response(const FilterChain& chain, std::size_t length);
 /// The largest output for inputs within -1 .. 1: sum |h[n]| until what is left is proven to be below `tail` of the
 /// sum; for stable chains.

@@ -30,13 +30,17 @@ void four_outputs(const std::vector<double>& taps, const double* newest, std::si
 }  // namespace
 
 FirDecimatorFilter::FirDecimatorFilter(const FirDecimator& design)
-    : taps_(design.taps), factor_(static_cast<std::size_t>(design.factor)), line_(taps_.size()) {}
+    : taps_(design.taps),
+      factor_(static_cast<std::size_t>(design.factor)),
+      phase_(static_cast<std::size_t>(design.phase_samples)),
+      line_(taps_.size()),
+      until_output_(phase_) {}
 
 void FirDecimatorFilter::reset() { preload(0.0); }
 
 void FirDecimatorFilter::preload(double value) {
     line_.fill(value);
-    until_output_ = 0;
+    until_output_ = phase_;
 }
 
 std::size_t FirDecimatorFilter::outputs_for(std::size_t inputs) const {

@@ -22,9 +22,9 @@ public:
 
 private:
     std::vector<double> taps_;
-    std::size_t factor_;
+    std::size_t factor_, phase_;
     SampleLine line_;
-    std::size_t until_output_ = 0;  ///< inputs that come before the one that gives the next output
+    std::size_t until_output_;  ///< inputs that come before the one that gives the next output
 };
 
 class FirInterpolatorFilter final : public StageFilter {

@@ -10,6 +10,7 @@ namespace halflsb {
 namespace {
 
 constexpr double most_factor = 4096.0;
+constexpr std::string_view phase_name = "phase_samples";
 constexpr double most_order = 8.0;
 constexpr double most_shift_bits = 62.0;
 constexpr std::size_t most_taps = 65536;
@@ -35,6 +36,15 @@ std::optional<Error> gain_beyond_double(const Cic& design) {
                       " or less, or factor = " + std::to_string(slower.factor) + " or less");
 }
 
+std::optional<Error> phase_beyond_factor(int phase, int factor) {
+    if (phase < factor) return std::nullopt;
+    return refuse("phase_samples",
+                  "phase_samples " + std::to_string(phase) + " is not one of the " + std::to_string(factor) +
+                      " inputs of a group, which count from 0",
+                  "give a number from 0 to " + std::to_string(factor - 1) + ": 0 returns with the first input, " +
+                      std::to_string(factor - 1) + " with the last");
+}
+
 template <class Cic>
 Outcome<FilterDesign> make_cic(const Recipe& recipe, const ParameterValues& values, const StageContext&) {
     if (auto error = misfit_of(recipe, values)) return *error;
@@ -43,6 +53,10 @@ Outcome<FilterDesign> make_cic(const Recipe& recipe, const ParameterValues& valu
     design.factor = static_cast<int>(*values.integer(recipe, "factor"));
     design.delay_samples = static_cast<int>(*values.integer(recipe, "delay_samples"));
     if (const auto bits = values.integer(recipe, "shift_bits")) design.shift_bits = static_cast<int>(*bits);
+    if constexpr (requires { design.phase_samples; }) {
+        design.phase_samples = static_cast<int>(*values.integer(recipe, phase_name));
+        if (auto error = phase_beyond_factor(design.phase_samples, design.factor)) return *error;
+    }
     if (auto error = gain_beyond_double(design)) return *error;
     return FilterDesign(design);
 }
@@ -51,7 +65,10 @@ Outcome<FilterDesign> make_decimator(const Recipe& recipe, const ParameterValues
     auto taps = taps_from(values, most_taps);
     if (!taps) return taps.error();
     if (auto error = misfit_of(recipe, values)) return *error;
-    return FilterDesign(FirDecimator{std::move(*taps), static_cast<int>(*values.integer(recipe, "factor"))});
+    const auto factor = static_cast<int>(*values.integer(recipe, "factor"));
+    const auto phase = static_cast<int>(*values.integer(recipe, phase_name));
+    if (auto error = phase_beyond_factor(phase, factor)) return *error;
+    return FilterDesign(FirDecimator{std::move(*taps), factor, phase});
 }
 
 Outcome<FilterDesign> make_interpolator(const Recipe& recipe, const ParameterValues& values, const StageContext&) {
@@ -108,20 +125,32 @@ std::vector<Parameter> tap_parameters(std::string_view taps_help, std::string_vi
             factor_parameter(factor_help)};
 }
 
-constexpr std::string_view drops = "One output for as many inputs, the first for the first input.";
+Recipe with_phase(Recipe recipe) {
+    recipe.parameters.push_back(
+        {.name = phase_name,
+         .type = ParameterType::integer,
+         .unit = "samples",
+         .minimum = 0.0,
+         .maximum = most_factor - 1.0,
+         .default_value = 0.0,
+         .help = "Which input of each group of factor the output is taken at, counted from 0: 0 returns with the "
+                 "first, factor - 1 waits for the last, as code that counts to factor does."});
+    return recipe;
+}
+
+constexpr std::string_view drops = "One output for as many inputs; phase_samples says with which of them.";
 constexpr std::string_view fills = "As many outputs for one input.";
 
 }  // namespace
 
 FilterKind cic_decimator_kind() {
-    return {{"cic-decimator",
-             "A cascade of integrators, a drop in rate, and combs: the moving sum of factor x delay_samples inputs, "
-             "order times over.",
-             cic_parameters(drops,
-                            "The firmware shifts the result right by this many bits; left out, the gain (factor "
-                            "delay_samples)^order is divided out.")},
-            make_cic<CicDecimator>,
-            nullptr};
+    return {with_phase({"cic-decimator",
+                        "A cascade of integrators, a drop in rate, and combs: the moving sum of factor x "
+                        "delay_samples inputs, order times over.",
+                        cic_parameters(drops,
+                                       "The firmware shifts the result right by this many bits; left out, the gain "
+                                       "(factor delay_samples)^order is divided out.")}),
+            make_cic<CicDecimator>, nullptr};
 }
 
 FilterKind cic_interpolator_kind() {
@@ -136,14 +165,13 @@ FilterKind cic_interpolator_kind() {
 }
 
 FilterKind fir_decimator_kind() {
-    return {{"fir-decimator",
-             "A finite impulse response of which each factor-th output is kept: y[m] = taps[0] x[m factor] + taps[1] "
-             "x[m factor - 1] + ...",
-             tap_parameters("The taps, 1 .. 65536 of them, the one of the newest sample first; one tap of 1 keeps each "
-                            "factor-th input.",
-                            drops)},
-            make_decimator,
-            complaint_about_taps};
+    return {with_phase({"fir-decimator",
+                        "A finite impulse response of which each factor-th output is kept: y[m] = taps[0] x[i] + "
+                        "taps[1] x[i - 1] + ..., i = m factor + phase_samples.",
+                        tap_parameters("The taps, 1 .. 65536 of them, the one of the newest sample first; one tap of 1 "
+                                       "keeps each factor-th input.",
+                                       drops)}),
+            make_decimator, complaint_about_taps};
 }
 
 FilterKind fir_interpolator_kind() {

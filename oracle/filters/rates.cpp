@@ -19,6 +19,12 @@ RateRatio ratio_of(const Design&) {
     return {};
 }
 
+template <class Design>
+int phase_of(const Design& design) {
+    if constexpr (requires { design.phase_samples; }) return design.phase_samples;
+    return 0;
+}
+
 // ceil(log2 of factor^power times rest), exact while the product is below 2^63.
 int bits_of(double gain) {
     int exponent = 0;
@@ -30,6 +36,10 @@ int bits_of(double gain) {
 
 RateRatio rate_ratio(const FilterDesign& design) {
     return std::visit([](const auto& kind) { return ratio_of(kind); }, design);
+}
+
+int phase_samples_of(const FilterDesign& design) {
+    return std::visit([](const auto& kind) { return phase_of(kind); }, design);
 }
 
 RateRatio rate_ratio(const FilterChain& chain) {
@@ -58,7 +68,8 @@ double output_rate_hz(const FilterStage& stage, double input_rate_hz) {
 std::int64_t outputs_after(const FilterChain& chain, std::int64_t inputs) {
     for (const FilterStage& stage : chain) {
         const RateRatio ratio = rate_ratio(stage.design);
-        inputs = ratio.down > 1 ? (inputs + ratio.down - 1) / ratio.down : inputs * ratio.up;
+        const int waits_for = ratio.down - 1 - phase_samples_of(stage.design);
+        inputs = ratio.down > 1 ? (inputs + waits_for) / ratio.down : inputs * ratio.up;
     }
     return inputs;
 }

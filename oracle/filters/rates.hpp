@@ -1,8 +1,9 @@
 // Chains that change the sample rate: by how much, how many samples come out, and when the pattern repeats.
 //
 // Delay conventions. Output m of a chain that raises the rate by up and lowers it by down belongs to the time of
-// input m down / up. A filter's delay counts from there, and a frequency in Hz keeps its meaning from stage to stage;
-// what a stage is given in Hz (a corner) is meant at the rate of its own input: output_rate_hz walks the chain.
+// input m down / up, whichever inputs its decimators wait for (phase_samples): that is part of the delay. A filter's
+// delay counts from there, and a frequency in Hz keeps its meaning from stage to stage; what a stage is given in Hz (a
+// corner) is meant at the rate of its own input: output_rate_hz walks the chain.
 #pragma once
 
 #include <cstdint>
@@ -18,13 +19,16 @@ struct RateRatio {
 };
 
 RateRatio rate_ratio(const FilterDesign& design);
+/// Of a decimator which input of each group of its factor gives the output, counted from 0; of any other kind 0.
+int phase_samples_of(const FilterDesign& design);
 RateRatio rate_ratio(const FilterChain& chain);
 /// Whether any stage changes the rate, even when a later one takes it back.
 bool changes_rate(const FilterChain& chain);
 /// Samples a second behind the stage.
 double output_rate_hz(const FilterStage& stage, double input_rate_hz);
 
-/// How many outputs the first `inputs` samples after a reset give. A decimator of R gives ceil(inputs / R).
+/// How many outputs the first `inputs` samples after a reset give. A decimator of R gives
+/// floor((inputs + R - 1 - phase_samples) / R).
 std::int64_t outputs_after(const FilterChain& chain, std::int64_t inputs);
 
 /// After `inputs` samples every decimator of the chain stands where it stood after a reset, and `outputs` samples have

@@ -147,8 +147,15 @@ std::complex<double> response_of_sums(const Cic& design, double f) {
     return product;
 }
 
-std::complex<double> response_of(const CicDecimator& design, double f) { return response_of_sums(design, f); }
-std::complex<double> response_of(const FirDecimator& design, double f) { return response_of(Fir{design.taps}, f); }
+// What comes phase_samples behind the time that an output belongs to is ahead by as much.
+std::complex<double> ahead(int samples, double f) { return unit_at_half_turns(product_modulo_2(2.0 * f, samples)); }
+
+std::complex<double> response_of(const CicDecimator& design, double f) {
+    return response_of_sums(design, f) * ahead(design.phase_samples, f);
+}
+std::complex<double> response_of(const FirDecimator& design, double f) {
+    return response_of(Fir{design.taps}, f) * ahead(design.phase_samples, f);
+}
 
 // f is of the higher rate, and the base image has one factor-th of the input's amplitude.
 std::complex<double> response_of(const CicInterpolator& design, double f) {

@@ -71,6 +71,7 @@ const std::vector<Body> bodies = {
     {"a CIC that changes no rate", "kind = \"cic-interpolator\"\norder = 3\nfactor = 1\n"},
     {"an interpolator whose taps are no multiple", "kind = \"fir-interpolator\"\ntaps = [0.5, 0.5, 0.5]\nfactor = 2\n"},
     {"an interpolator whose taps lack more than one", "kind = \"fir-interpolator\"\ntaps = [0.5, 0.5]\nfactor = 4\n"},
+    {"a phase beyond its group", "kind = \"fir-decimator\"\ntaps = [1.0]\nfactor = 4\nphase_samples = 4\n"},
     {"a decimator with the words of a CIC", "kind = \"fir-decimator\"\norder = 4\nfactor = 4\n"},
     {"a filter that changes the rate", "kind = \"cic-decimator\"\norder = 4\nfactor = 25\n"},
     {"a median of too many points", "kind = \"median\"\npoints = 5000\n"},

@@ -3,11 +3,12 @@
 // full_scale of the flush. Kinds: 0 moving average, points; 1 FIR, taps; 2 biquads, b0 b1 b2 a1 a2 of each section;
 // and, by the words of a plan at 1000 samples a second, 3 comb, delay direct forward feedback; 4 one-pole, way value; 5
 // DC blocker, way value gain; 6 notch, frequency q; by their numbers again 7 recursion, how many b, then b and a; 8
-// median, points; 9 CIC decimator and 10 CIC interpolator, order factor delay shift (-1: none); 11 FIR decimator and 12
-// FIR interpolator, factor, taps. 100 is added to the kind for a start with the first sample, 200 for one that grows.
-// The answer is: the output samples, real and imaginary part at each frequency, the L1 norm, the largest pole radius,
-// the samples of the flush (-1: none); of a lone recursion before all that whether it is stable (if not, that and its
-// radius are all), and behind it the bounds of a plain recursion's loss and of its own.
+// median, points; 9 CIC decimator and 10 CIC interpolator, order factor delay shift (-1: none), of 9 then the phase; 11
+// FIR decimator, factor, phase, taps; 12 FIR interpolator, factor, taps. 100 is added to the kind for a start with the
+// first sample, 200 for one that grows. The answer is: the output samples, real and imaginary part at each frequency,
+// the L1 norm, the largest pole radius, the samples of the flush (-1: none); of a lone recursion before all that
+// whether it is stable (if not, that and its radius are all), and behind it the bounds of a plain recursion's loss and
+// of its own.
 #include "oracle/filters/rates.hpp"
 #include "oracle/filters/recursion.hpp"
 #include "oracle/filters/stability.hpp"
@@ -71,12 +72,16 @@ template <class Cic>
 FilterDesign cic(const std::vector<double>& list) {
     Cic design{static_cast<int>(list.at(0)), static_cast<int>(list.at(1)), static_cast<int>(list.at(2)), {}};
     if (list.at(3) >= 0.0) design.shift_bits = static_cast<int>(list[3]);
+    if constexpr (requires { design.phase_samples; }) design.phase_samples = static_cast<int>(list.at(4));
     return design;
 }
 
-template <class FirWithRate>
-FilterDesign fir_with_rate(const std::vector<double>& list) {
-    return FirWithRate{{list.begin() + 1, list.end()}, static_cast<int>(list.at(0))};
+FilterDesign fir_decimator(const std::vector<double>& list) {
+    return FirDecimator{{list.begin() + 2, list.end()}, static_cast<int>(list.at(0)), static_cast<int>(list.at(1))};
+}
+
+FilterDesign fir_interpolator(const std::vector<double>& list) {
+    return FirInterpolator{{list.begin() + 1, list.end()}, static_cast<int>(list.at(0))};
 }
 
 FilterStage stage_of(int kind, std::vector<double> list) {
@@ -84,8 +89,8 @@ FilterStage stage_of(int kind, std::vector<double> list) {
     if (kind == 8) return {Median{static_cast<int>(list.at(0))}, std::nullopt};
     if (kind == 9) return {cic<CicDecimator>(list), std::nullopt};
     if (kind == 10) return {cic<CicInterpolator>(list), std::nullopt};
-    if (kind == 11) return {fir_with_rate<FirDecimator>(list), std::nullopt};
-    if (kind == 12) return {fir_with_rate<FirInterpolator>(list), std::nullopt};
+    if (kind == 11) return {fir_decimator(list), std::nullopt};
+    if (kind == 12) return {fir_interpolator(list), std::nullopt};
     if (kind == 0) return {MovingAverage{static_cast<int>(list.at(0))}, std::nullopt};
     if (kind == 1) return {Fir{std::move(list)}, std::nullopt};
     if (kind == 3) return comb(list);

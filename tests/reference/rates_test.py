@@ -31,11 +31,13 @@ def random_taps(rng, factor):
 
 def random_stage(rng, kind):
     factor = int(rng.integers(2, 13))
+    phase = int(rng.integers(0, factor))
     if kind in (9, 10):
         order = int(rng.integers(1, 7))
-        return kind, [order, factor, int(rng.integers(1, 3)), int(rng.choice([-1, rng.integers(0, 20)]))]
+        words = [order, factor, int(rng.integers(1, 3)), int(rng.choice([-1, rng.integers(0, 20)]))]
+        return kind, words + ([phase] if kind == 9 else [])
     if kind == 11:
-        return kind, [factor, *rng.uniform(-1, 1, rng.integers(1, 600))]
+        return kind, [factor, phase, *rng.uniform(-1, 1, rng.integers(1, 600))]
     return kind, [factor, *random_taps(rng, factor)]
 
 
@@ -64,7 +66,7 @@ def random_designs(rng):
         yield "start", [start_design(rng)]
 
 
-def as_integers(order, factor, delay, codes, up):
+def as_integers(order, factor, delay, codes, up, phase):
     """Hogenauer's integrators and combs; the integers never overflow."""
     x = [int(c) for c in codes]
     if up:
@@ -78,37 +80,45 @@ def as_integers(order, factor, delay, codes, up):
             sums.append(total)
         x = sums
     if not up:
-        x = x[::factor]
+        x = x[phase::factor]
         for _ in range(order):
             x = [v - (x[n - delay] if n >= delay else 0) for n, v in enumerate(x)]
     return x
 
 
 def rate_of(kind, numbers):
-    """up, down and the taps at the higher rate."""
+    """up, down, the taps at the higher rate, and a decimator's phase."""
     if kind in (9, 10):
-        order, factor, delay, shift = numbers
+        order, factor, delay, shift = numbers[:4]
         taps = taps_of_cic(order, factor, delay, shift, kind == 10)
+        phase = numbers[4] if kind == 9 else 0
     else:
-        factor, taps = int(numbers[0]), np.array(numbers[1:])
-    return (1, factor, taps) if kind in (9, 11) else (factor, 1, taps)
+        factor, phase = int(numbers[0]), int(numbers[1]) if kind == 11 else 0
+        taps = np.array(numbers[2 if kind == 11 else 1 :])
+    return (1, factor, taps, phase) if kind in (9, 11) else (factor, 1, taps, 0)
 
 
 def by_upfirdn(stages, samples):
     for kind, numbers in stages:
-        up, down, taps = rate_of(kind, numbers)
-        count = -(-len(samples) // down) if down > 1 else len(samples) * up
-        samples = signal.upfirdn(taps, samples, up, down)[:count]
+        up, down, taps, phase = rate_of(kind, numbers)
+        if down > 1:
+            # As many zeros in front as let a group's last zero or first sample fall where the phase is.
+            ahead = (down - phase) % down
+            count = -(-(len(samples) + ahead) // down)
+            samples = signal.upfirdn(taps, np.concatenate([np.zeros(ahead), samples]), 1, down)[:count]
+            samples = samples[1:] if ahead else samples
+        else:
+            samples = signal.upfirdn(taps, samples, up)[: len(samples) * up]
     return samples
 
 
 def response_of(stages, f):
-    """From the input's frequency to the base image at the output."""
+    """From the input's frequency to the base image at the output, which stands at the time of its group's first input."""
     product = np.ones(len(f), complex)
     for kind, numbers in stages:
-        up, down, taps = rate_of(kind, numbers)
+        up, down, taps, phase = rate_of(kind, numbers)
         f = f / up
-        product = product * signal.freqz(taps, 1, 2 * np.pi * f)[1] / up
+        product = product * signal.freqz(taps, 1, 2 * np.pi * f)[1] / up * np.exp(2j * np.pi * f * phase)
         f = f * down
     return product
 
@@ -129,7 +139,7 @@ def norm_of(stages, cycle_in, cycle_out):
 def cycle_of(stages):
     inputs, outputs = 1, 1
     for kind, numbers in stages:
-        up, down, _ = rate_of(kind, numbers)
+        up, down, _, _ = rate_of(kind, numbers)
         rounds = down // np.gcd(outputs, down)
         inputs, outputs = inputs * rounds, outputs * rounds // down * up
     return int(inputs), int(outputs)
@@ -224,8 +234,8 @@ def main():
             continue
         check(number, "response", np.max(np.abs(response - response_of(stages, f))), TOLERANCE * norm * 10)
         if name.startswith("CIC"):
-            order, factor, delay, shift = stages[0][1]
-            exact = as_integers(order, factor, delay, samples, stages[0][0] == 10)
+            order, factor, delay, shift, phase = (*stages[0][1], 0)[:5]
+            exact = as_integers(order, factor, delay, samples, stages[0][0] == 10, phase)
             # (R M)^N x 128 is at most 2^33.5: whole numbers, exact but for the one division.
             divisor = 2**shift if shift >= 0 else (factor * delay) ** order / (factor if stages[0][0] == 10 else 1)
             check(number, "against integers", np.max(np.abs(output - [v / divisor for v in exact])), 1e-300)

@@ -59,6 +59,8 @@ def words_of(draw, kind):
         count, words = draw.one_of([1, 2, 3, 7, 12, 24]), {}
         if kind != "fir":
             words["factor"] = draw.whole(2, 5)
+            if kind == "fir-decimator" and draw.chance(0.7):
+                words["phase_samples"] = draw.whole(0, words["factor"] - 1)
             if kind == "fir-interpolator":
                 count = words["factor"] * draw.whole(1, 5)
         size = draw.one_of([1.0, 2.0 / count, 1.0 / count])
@@ -85,6 +87,8 @@ def words_of(draw, kind):
     words = {"order": draw.whole(1, 4), "factor": draw.whole(2, 8), "delay_samples": draw.whole(1, 2)}
     if draw.chance(0.5):
         words["shift_bits"] = draw.whole(0, 8)
+    if kind == "cic-decimator" and draw.chance(0.7):
+        words["phase_samples"] = draw.whole(0, words["factor"] - 1)
     return words
 
 

@@ -101,7 +101,7 @@ class FirDecimator(Fir):
 
     def step(self, x):
         self.index += 1
-        if self.index % self.stage.words["factor"] == 0:
+        if self.index % self.stage.words["factor"] == self.stage.words.get("phase_samples", 0):
             return super().step(x)
         self.past.appendleft(x)
         return []

@@ -75,7 +75,7 @@ class FirDecimator(Fir):
 
     def step(self, x):
         self.index += 1
-        if self.index % self.stage.words["factor"] == 0:
+        if self.index % self.stage.words["factor"] == self.stage.words.get("phase_samples", 0):
             return super().step(x)
         self.past.appendleft(x)
         return []
@@ -254,7 +254,7 @@ class Cic:
     def __init__(self, stage):
         self.stage, words = stage, stage.words
         self.order, self.factor, self.delay = words["order"], words["factor"], words.get("delay_samples", 1)
-        self.down = stage.kind == "cic-decimator"
+        self.down, self.phase = stage.kind == "cic-decimator", words.get("phase_samples", 0)
         gain = (self.factor * self.delay) ** self.order
         if not self.down:
             gain //= self.factor
@@ -288,4 +288,4 @@ class Cic:
             return [self.short(self.integrated(u)) for u in [value] + [0] * (self.factor - 1)]
         self.index += 1
         value = self.integrated(x)
-        return [self.short(self.combed(value))] if self.index % self.factor == 0 else []
+        return [self.short(self.combed(value))] if self.index % self.factor == self.phase else []

@@ -42,6 +42,13 @@ FilterStage cic(const char* kind, int order, int factor, int delay, std::initial
     return promised_stage(kind, {n, r, m, number("shift_bits", *shift)}, promised);
 }
 
+FilterStage waiting(const char* kind, int phase, std::initializer_list<Given> promised) {
+    const std::vector<double> taps{0.4, -0.2, 0.6, 0.3, -0.5, 0.25, 0.125};
+    const Given r = number("factor", 5), p = number("phase_samples", phase);
+    if (kind == std::string("fir-decimator")) return promised_stage(kind, {{"taps", taps}, r, p}, promised);
+    return promised_stage(kind, {number("order", 3), r, p, number("shift_bits", 7)}, promised);
+}
+
 void check_splits(const FilterStage& stage, const Codes& in) {
     const auto twin = twin_of({stage});
     const Codes expected = run(*twin, in);
@@ -80,6 +87,30 @@ TEST_CASE("cic: a decimator returns each factor-th of the moving sums, shifted o
         const auto by_gain = cic("cic-decimator", 3, 5, delay, {word("rounding", "toward-zero")});
         CHECK(run(*twin_of({by_gain}), in) == divided);
         check_splits(by_shift, in);
+    }
+}
+
+TEST_CASE("decimators: with a phase the outputs are those of phase 0 for an input that comes so much later", "[twin]") {
+    // What is returned at index m R + p is what phase 0 returns at (m + 1) R of an input with R - p zeros before it.
+    const Codes in = noise_codes(1003, 78);
+    for (const char* kind : {"fir-decimator", "cic-decimator"}) {
+        for (const bool is_float : {false, true}) {
+            if (is_float && kind == std::string("cic-decimator")) continue;
+            const std::initializer_list<Given> whole_words{number("coefficient_fraction_bits", 12),
+                                                           word("rounding", "half-up")},
+                cic_words{word("rounding", "half-up")}, floats{word("number", "float32"), word("rounding", "half-up")};
+            const auto& promised = is_float ? floats : kind == std::string("cic-decimator") ? cic_words : whole_words;
+            for (int phase = 1; phase < 5; ++phase) {
+                INFO(kind << ", phase " << phase);
+                Codes later(static_cast<std::size_t>(5 - phase), 0);
+                later.insert(later.end(), in.begin(), in.end());
+                Codes expected = run(*twin_of({waiting(kind, 0, promised)}), later);
+                expected.erase(expected.begin());
+                const auto stage = waiting(kind, phase, promised);
+                CHECK(run(*twin_of({stage}), in) == expected);
+                check_splits(stage, in);
+            }
+        }
     }
 }
 

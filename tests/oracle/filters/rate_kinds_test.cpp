@@ -75,6 +75,32 @@ TEST_CASE("catalogue: decimators and interpolators take taps or a file of them",
           "taps: all taps are 0\n  at least one tap must differ from 0");
 }
 
+TEST_CASE("catalogue: a decimator's phase is one of its factor's inputs", "[filters]") {
+    const std::vector<double> taps{0.25, 0.5};
+    const auto fir = [&](int phase) {
+        return refusal("fir-decimator", {{"taps", taps}, {"factor", whole(4)}, {"phase_samples", whole(phase)}});
+    };
+    const auto cic = [](int phase) {
+        return refusal("cic-decimator", {{"order", whole(2)}, {"factor", whole(4)}, {"phase_samples", whole(phase)}});
+    };
+    for (int phase = 0; phase < 4; ++phase) CHECK((fir(phase) == "accepted" && cic(phase) == "accepted"));
+    const std::string beyond =
+        "phase_samples: phase_samples 4 is not one of the 4 inputs of a group, which count from 0
+        "
+        "  give a number from 0 to 3: 0 returns with the first input, 3 with the last";
+    CHECK((fir(4) == beyond && cic(4) == beyond));
+    CHECK(fir(-1) == "phase_samples: -1 samples is below the least, 0 samples\n  give 0 or more");
+    CHECK(cic(4096) == "phase_samples: 4096 samples is above the largest, 4095 samples\n  give 4095 or less");
+    const auto down = make("cic-decimator", {{"order", whole(2)}, {"factor", whole(4)}, {"phase_samples", whole(3)}});
+    REQUIRE(down);
+    CHECK(std::get<CicDecimator>(down->design).phase_samples == 3);
+    const auto kept = make("fir-decimator", {{"taps", taps}, {"factor", whole(4)}, {"phase_samples", whole(2)}});
+    REQUIRE(kept);
+    CHECK(std::get<FirDecimator>(kept->design).phase_samples == 2);
+    CHECK(refusal("cic-interpolator", {{"order", whole(2)}, {"factor", whole(4)}, {"phase_samples", whole(1)}}) !=
+          "accepted");
+}
+
 TEST_CASE("catalogue: an interpolator whose phases differ in length is refused with the padding", "[filters]") {
     const auto with_taps = [](std::size_t count, const char* name) {
         return refusal("fir-interpolator", {{name, std::vector<double>(count, 0.5)}, {"factor", whole(4)}});

@@ -27,9 +27,16 @@ std::vector<Named> rate_changers() {
         {"fir decimator", {stage(FirDecimator{noise(64, 1), 4})}},
         {"fir decimator with fewer taps than its factor", {stage(FirDecimator{{1.0}, 7})}},
         {"fir decimator, long", {stage(FirDecimator{noise(2500, 2), 3})}},
+        {"cic decimator that waits for the last", {stage(CicDecimator{3, 10, 2, {}, 9})}},
+        {"fir decimator that returns with the second", {stage(FirDecimator{noise(64, 21), 4, 1})}},
+        {"fir decimator, long, that waits for the last", {stage(FirDecimator{noise(2500, 22), 3, 2})}},
         {"fir interpolator", {stage(FirInterpolator{noise(40, 3), 5})}},
         {"up and down", {stage(FirInterpolator{noise(30, 4), 3}), stage(FirDecimator{noise(20, 5), 5})}},
         {"down and up", {stage(CicDecimator{2, 4, 1, {}}), stage(low), stage(CicInterpolator{2, 4, 1, {}})}},
+        {"up and down, waiting", {stage(FirInterpolator{noise(30, 4), 3}), stage(FirDecimator{noise(20, 5), 5, 3})}},
+        {"down, down and up, waiting",
+         {stage(CicDecimator{2, 4, 1, {}, 3}), stage(FirDecimator{noise(20, 23), 3, 1}), stage(low),
+          stage(CicInterpolator{2, 4, 1, {}})}},
         {"all the way",
          {stage(MovingAverage{3}), stage(CicDecimator{3, 16, 1, {}}), stage(Fir{noise(9, 6)}),
           stage(FirDecimator{noise(31, 7), 2}), stage(low), stage(FirInterpolator{noise(12, 8), 3}),
@@ -50,9 +57,10 @@ std::vector<double> stuffed(std::span<const double> in, int factor) {
     return out;
 }
 
-std::vector<double> each(std::span<const double> in, int factor) {
+std::vector<double> each(std::span<const double> in, int factor, int phase = 0) {
     std::vector<double> out;
-    for (std::size_t n = 0; n < in.size(); n += static_cast<std::size_t>(factor)) out.push_back(in[n]);
+    for (auto n = static_cast<std::size_t>(phase); n < in.size(); n += static_cast<std::size_t>(factor))
+        out.push_back(in[n]);
     return out;
 }
 
@@ -134,13 +142,17 @@ TEST_CASE("rates: a block writes its outputs and nothing behind them", "[filters
     }
 }
 
-TEST_CASE("fir decimator: output m is that of the FIR at input m R, bit for bit", "[filters]") {
+TEST_CASE("fir decimator: output m is that of the FIR at input m R + phase, bit for bit", "[filters]") {
     const auto in = noise(4000, 15);
     for (const int factor : {2, 3, 7, 4096}) {
         for (const std::size_t taps : {1u, 5u, 64u, 700u}) {
             const auto list = noise(taps, 16);
             const auto full = run({stage(Fir{list})}, in);
             CHECK(same_bits(run_at_rate({stage(FirDecimator{list, factor})}, in), each(full, factor)));
+            for (const int phase : {1, factor / 2, factor - 1}) {
+                CHECK(
+                    same_bits(run_at_rate({stage(FirDecimator{list, factor, phase})}, in), each(full, factor, phase)));
+            }
         }
     }
 }
@@ -171,11 +183,13 @@ TEST_CASE("cic decimator: the same as integrators and combs in words that wrap",
         const std::vector<double> in(codes.begin(), codes.end());
 
         auto kept = integrators(codes, order);
+        const int phase = trial % 2 == 0 ? 0 : static_cast<int>(random.whole(1, factor - 1));
         std::vector<std::int64_t> low;
-        for (std::size_t n = 0; n < kept.size(); n += static_cast<std::size_t>(factor)) low.push_back(kept[n]);
+        for (auto n = static_cast<std::size_t>(phase); n < kept.size(); n += static_cast<std::size_t>(factor))
+            low.push_back(kept[n]);
         const auto expected = combs(low, order, delay);
-        const auto out = run_at_rate({stage(CicDecimator{order, factor, delay, 0})}, in);
-        INFO("order " << order << ", factor " << factor << ", delay " << delay);
+        const auto out = run_at_rate({stage(CicDecimator{order, factor, delay, 0, phase})}, in);
+        INFO("order " << order << ", factor " << factor << ", delay " << delay << ", phase " << phase);
         REQUIRE(out.size() == expected.size());
         for (std::size_t m = 0; m < out.size(); ++m) {
             if (out[m] != static_cast<double>(expected[m])) FAIL("output " << m);
@@ -242,6 +256,30 @@ TEST_CASE("rates: ratios are in lowest terms, cycles say when the pattern repeat
     CHECK(outputs_after({down(4)}, 4) == 1);
     CHECK(outputs_after({down(4)}, 5) == 2);
     CHECK(outputs_after({up(3), down(2)}, 3) == 5);
+    // With its last input a group is complete; with the second of four it is not, and the output is there.
+    const FilterChain waits{stage(FirDecimator{{1.0}, 4, 3})}, second{stage(CicDecimator{1, 4, 1, {}, 1})};
+    CHECK((outputs_after(waits, 3) == 0 && outputs_after(waits, 4) == 1 && outputs_after(waits, 7) == 1 &&
+           outputs_after(waits, 8) == 2));
+    CHECK((outputs_after(second, 1) == 0 && outputs_after(second, 2) == 1 && outputs_after(second, 5) == 1 &&
+           outputs_after(second, 6) == 2));
+    CHECK((rate_cycle(waits) == RateCycle{4, 1} && rate_ratio(waits) == RateRatio{1, 4}));
+    CHECK((phase_samples_of(waits[0].design) == 3 && phase_samples_of(second[0].design) == 1));
+    CHECK(phase_samples_of(up(3).design) == 0);
+}
+
+TEST_CASE("rates: a phase is a turn by its samples at the input's rate", "[filters]") {
+    // Of a tap alone H is 1, so that what stays is e^(j 2 pi f phase): f = 1/16, phase 2 an eighth of a turn.
+    const auto h = response_at({stage(FirDecimator{{1.0}, 4, 2})}, 1.0 / 16.0);
+    CHECK(h.real() == Approx(std::sqrt(0.5)).epsilon(1e-15));
+    CHECK(h.imag() == Approx(std::sqrt(0.5)).epsilon(1e-15));
+    // Beyond half the output's rate the gain is what comes through at the alias; behind a decimator of 5 that is f =
+    // 1/2.
+    const auto twice = response_at({stage(FirDecimator{{1.0}, 5}), stage(FirDecimator{{1.0}, 2, 1})}, 0.1);
+    CHECK(twice.real() == Approx(-1.0).epsilon(1e-15));
+    CHECK(std::fabs(twice.imag()) < 1e-15);
+    // A CIC that waits for the last input of its window is delayed by (R - 1) / 2 less its phase: ahead of its time.
+    const FilterChain sum{stage(CicDecimator{1, 8, 1, {}, 7})};
+    CHECK(std::arg(response_at(sum, 0.01)) == Approx(2.0 * std::numbers::pi * 0.01 * (7.0 - 3.5)).epsilon(1e-12));
 }
 
 TEST_CASE("rates: the response is what a tone of the base band meets", "[filters]") {
