@@ -26,7 +26,8 @@ std::vector<PredictedAssumption> assumptions_of(const DescribedChain& chain) {
         const auto& said = stage.stage.arithmetic;
         PredictedAssumption assumed{i + 1, {}};
         if (!stage.rounding_is_said) assumed.taken.push_back("each rounding anywhere from floor to half-up");
-        if (!said.accumulator_bits) assumed.taken.push_back("an accumulator as wide as it takes");
+        if (!said.accumulator_bits && has_word(stage.stage, "accumulator_bits"))
+            assumed.taken.push_back("an accumulator as wide as it takes");
         if (!stage.coefficients_are_said) assumed.taken.push_back("coefficients as they are designed");
         if (!stage.words_are_said) assumed.taken.push_back("words behind it as fine as it takes");
         const bool saturates = i + 1 == chain.stages.size() && said.output_overflow == Overflow::saturate;

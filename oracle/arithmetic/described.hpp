@@ -95,6 +95,8 @@ struct DescribedOrProblem {
 DescribedOrProblem describe(const FilterChain& chain, const SampleFormat& input, const SampleFormat& output,
                             double output_per_input);
 
+/// Whether a stage of that kind has the word of [arithmetic].
+bool has_word(const FilterStage& stage, std::string_view word);
 /// The first word of a stage's own [filter.arithmetic] that its kind of filter has no use for.
 std::optional<Error> misplaced_word(const FilterStage& stage, const ParameterValues& own);
 

@@ -19,7 +19,5 @@ const std::vector<Structure>& structures_of(Family family);
 Structure structure_of(const FilterStage& stage);
 /// A one-pole that a firmware computes with a shift has 1 for its coefficient.
 bool is_by_shift(const FilterStage& stage);
-/// Whether a stage of that kind has the word of [arithmetic].
-bool has_word(const FilterStage& stage, std::string_view word);
 
 }  // namespace halflsb
