@@ -85,8 +85,7 @@ TEST_CASE("catalogue: a decimator's phase is one of its factor's inputs", "[filt
     };
     for (int phase = 0; phase < 4; ++phase) CHECK((fir(phase) == "accepted" && cic(phase) == "accepted"));
     const std::string beyond =
-        "phase_samples: phase_samples 4 is not one of the 4 inputs of a group, which count from 0
-        "
+        "phase_samples: phase_samples 4 is not one of the 4 inputs of a group, which count from 0\n"
         "  give a number from 0 to 3: 0 returns with the first input, 3 with the last";
     CHECK((fir(4) == beyond && cic(4) == beyond));
     CHECK(fir(-1) == "phase_samples: -1 samples is below the least, 0 samples\n  give 0 or more");
