@@ -24,11 +24,11 @@ double product_of_norms(const FilterChain& chain, double tail) {
 
 }  // namespace
 
-double l1_of_changing_rate(const FilterChain& chain, double tail) {
+std::optional<PhaseSums> sums_of_changing_rate(const FilterChain& chain, double tail) {
     const RateCycle cycle = rate_cycle(chain);
-    if (cycle.inputs > longest_cycle || cycle.outputs > most_samples)
-        return chain.size() > 1 ? product_of_norms(chain, tail) : no_limit;
-    std::vector<double> sums(static_cast<std::size_t>(cycle.outputs), 0.0);
+    if (cycle.inputs > longest_cycle || cycle.outputs > most_samples) return std::nullopt;
+    std::vector<double> above(static_cast<std::size_t>(cycle.outputs), 0.0), below = above;
+    double rest = 0.0;
     ImpulseRun run(chain);
     for (std::int64_t input = 0; input < cycle.inputs; ++input) {
         run.restart(static_cast<std::size_t>(input));
@@ -36,15 +36,30 @@ double l1_of_changing_rate(const FilterChain& chain, double tail) {
         double sum = 0.0;
         for (std::int64_t done = 0;; done += static_cast<std::int64_t>(ImpulseRun::piece_samples)) {
             for (const double h : run.next()) {
-                sums[phase] += std::fabs(h);
+                (h > 0.0 ? above : below)[phase] += h;
                 sum += std::fabs(h);
-                if (++phase == sums.size()) phase = 0;
+                if (++phase == above.size()) phase = 0;
             }
             if (run.rest() <= tail * sum) break;
-            if (done > input + most_samples) return chain.size() > 1 ? product_of_norms(chain, tail) : no_limit;
+            if (done > input + most_samples) return std::nullopt;
         }
+        rest += run.rest();
     }
-    return *std::max_element(sums.begin(), sums.end());
+    PhaseSums sums;
+    for (std::size_t phase = 0; phase < above.size(); ++phase) {
+        sums.sizes = std::max(sums.sizes, above[phase] - below[phase]);
+        sums.positive = std::max(sums.positive, above[phase]);
+        sums.negative = std::min(sums.negative, below[phase]);
+    }
+    sums.sizes += rest;
+    sums.positive += rest;
+    sums.negative -= rest;
+    return sums;
+}
+
+double l1_of_changing_rate(const FilterChain& chain, double tail) {
+    if (const auto sums = sums_of_changing_rate(chain, tail)) return sums->sizes;
+    return chain.size() > 1 ? product_of_norms(chain, tail) : no_limit;
 }
 
 std::optional<std::int64_t> flush_of_changing_rate(const FilterChain& chain, double limit) {
