@@ -45,7 +45,11 @@ static uint8_t* put_filter(uint8_t* to, const struct halflsb_filter* filter) {
                               filter->channels_out, 0 /* nodes */, filter->tables};
     to = put_text(to, filter->name);
     memcpy(to, facts, sizeof facts);
-    return to + sizeof facts;
+    to += sizeof facts;
+#if HALFLSB_RATES
+    if (filter->process_rate != NULL) to = halflsb_put16(halflsb_put16(to, filter->up), filter->down);
+#endif
+    return to;
 }
 
 static uint8_t* put_setting(uint8_t* to, const struct halflsb_setting* setting) {

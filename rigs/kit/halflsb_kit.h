@@ -26,6 +26,9 @@ extern "C" {
 #ifndef HALFLSB_WORD_BYTES
 #define HALFLSB_WORD_BYTES 4 /* widest sample in its container, times the channels of one instant, 1 .. 16 */
 #endif
+#ifndef HALFLSB_RATES
+#define HALFLSB_RATES 0 /* 1: some filter changes the sample rate */
+#endif
 
 enum halflsb_injection { HALFLSB_CALL = 0, HALFLSB_BUFFER = 1, HALFLSB_CONVERTER = 2 };
 
@@ -62,7 +65,12 @@ enum halflsb_format {
  *
  * Words are in the machine's own order and aligned to their size, so that `in` and `out` can be read as arrays. The kit
  * turns no byte of a format with HALFLSB_BIG, nor of a packed one: such words lie in memory as they travel, most
- * (or, packed without HALFLSB_BIG, least) significant byte first, as a DMA would have put them there. */
+ * (or, packed without HALFLSB_BIG, least) significant byte first, as a DMA would have put them there.
+ *
+ * A filter that changes the sample rate (HALFLSB_RATES 1) says how: of `down` instants come `up`, the smallest numbers
+ * after which the pattern begins anew (a decimator by 8: 1 and 8; by 2 and then up by 2: 2 and 2). In place of
+ * `process` it has `process_rate`, which returns how many instants it wrote; `in` may lie in the same memory, so far
+ * behind `out` that a filter which takes each input before it writes what came of it overwrites none. */
 struct halflsb_filter {
     const char* name; /* to 24 bytes */
     uint8_t injection, input, output, channels_in, channels_out, tables;
@@ -70,6 +78,10 @@ struct halflsb_filter {
     void (*process)(const void* in, void* out, uint16_t count);
     /* writes `count` values at `offset` of a table; 0 when out of range. NULL when tables is 0. */
     int (*load)(uint8_t table, uint16_t offset, const int32_t* values, uint8_t count);
+#if HALFLSB_RATES
+    uint16_t up, down;
+    uint16_t (*process_rate)(const void* in, void* out, uint16_t count); /* NULL: the rate does not change */
+#endif
 };
 
 struct halflsb_setting {

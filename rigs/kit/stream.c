@@ -17,13 +17,21 @@
 
 #define TICKS_LARGEST_CAP 0xFFFFFFu
 
+/* What an instant takes, and how many come back. */
+struct shape {
+    uint32_t in, out; /* bytes of all channels at one instant */
+#if HALFLSB_RATES
+    uint32_t up, down; /* of `down` instants come `up` */
+#endif
+    uint32_t fraction; /* of an input word's alignment: 0, 1 or 3 */
+};
+
 static struct {
     const struct halflsb_filter* filter; /* NULL: no stream is open */
     uint64_t index;                      /* samples processed since START */
     uint32_t nonce;
     uint16_t block_samples, expected, ahead;
-    uint16_t in, out; /* bytes of all channels at one instant */
-    uint8_t in_alignment;
+    struct shape shape;
     uint8_t credit, in_gap;
 } stream;
 
@@ -34,32 +42,95 @@ void halflsb_stream_close(void) {
     counters.gaps = counters.resent = counters.blocks = 0;
 }
 
+#if HALFLSB_RATES
+
+/* The most bytes that come of so many instants. */
+static uint32_t most_out(const struct shape* shape, uint32_t count) {
+    return (count + shape->down - 1u) / shape->down * shape->up * shape->out;
+}
+
+/* How far the input stands behind the output, so that no instant is overwritten before its turn: a group's first
+ * instant may bring all that the group returns. */
+static uint32_t behind_of(const struct shape* shape, uint32_t count) {
+    const uint32_t group = shape->down * shape->in;
+    uint32_t out = most_out(shape, 1), in = shape->in; /* after the first instant */
+    if (out >= group) {                                /* or after the last group's first */
+        out = most_out(shape, count) + group;
+        in += count * shape->in;
+    }
+    return out > in ? (out - in + shape->fraction) & ~shape->fraction : 0;
+}
+
+static uint32_t run(const struct halflsb_filter* filter, const void* in, void* out, uint32_t count) {
+    if (filter->process_rate != NULL) return filter->process_rate(in, out, (uint16_t)count);
+    filter->process(in, out, (uint16_t)count);
+    return count;
+}
+
+static int set_rate(struct shape* shape, const struct halflsb_filter* filter) {
+    shape->up = filter->process_rate == NULL ? 1u : filter->up;
+    shape->down = filter->process_rate == NULL ? 1u : filter->down;
+    return shape->down != 0;
+}
+
+static int changes_rate(const struct halflsb_filter* filter) { return filter->process_rate != NULL; }
+
+/* Of an answer's samples, with the input that stands there before. */
+static uint32_t room_of(const struct shape* shape, uint32_t count) {
+    const uint32_t in = count * shape->in + behind_of(shape, count), out = most_out(shape, count);
+    return in > out ? in : out;
+}
+
+static uint32_t largest_block(const struct shape* shape, uint32_t asked) {
+    while (asked != 0 && room_of(shape, asked) > HALFLSB_BLOCK_BYTES) asked--;
+    return asked;
+}
+
+#else
+
+static uint32_t wider_of(const struct shape* shape) { return shape->in > shape->out ? shape->in : shape->out; }
+static uint32_t behind_of(const struct shape* shape, uint32_t count) {
+    return (count * (wider_of(shape) - shape->in) + shape->fraction) & ~shape->fraction;
+}
+static uint32_t room_of(const struct shape* shape, uint32_t count) { return count * wider_of(shape); }
+static uint32_t largest_block(const struct shape* shape, uint32_t asked) {
+    const uint32_t most = HALFLSB_BLOCK_BYTES / wider_of(shape);
+    return asked < most ? asked : most;
+}
+static uint32_t run(const struct halflsb_filter* filter, const void* in, void* out, uint32_t count) {
+    filter->process(in, out, (uint16_t)count);
+    return count;
+}
+#define set_rate(shape, filter) 1
+#define changes_rate(filter) 0
+
+#endif
+
 enum halflsb_reason halflsb_stream_open(const struct halflsb_board* board, const struct halflsb_frame* start) {
     const uint32_t nonce = halflsb_get32(start->head + 1);
-    const uint16_t asked = halflsb_get16(start->head + 6);
     const struct halflsb_filter* filter;
-    uint8_t in_word;
-    uint32_t in, out, wider, most, credit;
+    struct shape shape;
+    uint32_t block = halflsb_get16(start->head + 6), credit;
     if (stream.filter != NULL && nonce == stream.nonce) return HALFLSB_ACCEPTED;
     if (start->head[5] >= board->filter_count) return HALFLSB_NO_SUCH_THING;
-    if (asked == 0 || asked > halflsb_block_samples(board)) return HALFLSB_OUT_OF_RANGE;
+    if (block == 0 || block > halflsb_block_samples(board)) return HALFLSB_OUT_OF_RANGE;
     if (halflsb_get32(start->head + 8) != 0) return HALFLSB_NOT_SUPPORTED;
     filter = &board->filters[start->head[5]];
-    in_word = halflsb_word_bytes(filter->input);
-    in = (uint32_t)in_word * filter->channels_in;
-    out = (uint32_t)halflsb_word_bytes(filter->output) * filter->channels_out;
-    wider = in > out ? in : out;
-    if (in == 0 || out == 0 || wider > HALFLSB_BLOCK_BYTES) return HALFLSB_NOT_SUPPORTED;
+    shape.in = halflsb_word_bytes(filter->input);
+    shape.fraction = halflsb_word_alignment((uint8_t)shape.in) - 1u;
+    shape.in *= filter->channels_in;
+    shape.out = (uint32_t)halflsb_word_bytes(filter->output) * filter->channels_out;
+    if (shape.in == 0 || shape.out == 0 || !set_rate(&shape, filter)) return HALFLSB_NOT_SUPPORTED;
+    /* Smaller than asked for when this filter's words are wider, or more of them come back. */
+    block = largest_block(&shape, block);
+    if (block == 0) return HALFLSB_NOT_SUPPORTED;
 
-    most = HALFLSB_BLOCK_BYTES / wider; /* fewer than compiled for, when this filter's words are wider */
-    stream.block_samples = asked < most ? asked : (uint16_t)most;
-    credit = (HALFLSB_RING_BYTES - HALFLSB_RING_SPARE_BYTES) / HALFLSB_RECEIVE_BYTES(stream.block_samples * in);
+    credit = (HALFLSB_RING_BYTES - HALFLSB_RING_SPARE_BYTES) / HALFLSB_RECEIVE_BYTES(block * shape.in);
     if (credit > HALFLSB_MOST_CREDIT) credit = HALFLSB_MOST_CREDIT;
     if (board->credit_blocks != 0 && credit > board->credit_blocks) credit = board->credit_blocks;
-    stream.credit = halflsb_answers_open(stream.block_samples * wider, (uint8_t)credit);
-    stream.in_alignment = halflsb_word_alignment(in_word);
-    stream.in = (uint16_t)in;
-    stream.out = (uint16_t)out;
+    stream.block_samples = (uint16_t)block;
+    stream.credit = halflsb_answers_open(room_of(&shape, block), (uint8_t)credit);
+    stream.shape = shape;
     stream.filter = filter;
     stream.nonce = nonce;
     stream.index = 0;
@@ -75,19 +146,19 @@ const struct halflsb_stream_counters* halflsb_stream_counters(void) { return &co
 
 /* Answers in place: the input stands so far behind the output that no sample is overwritten before its turn. */
 static uint32_t process(const struct halflsb_board* board, const struct halflsb_frame* frame, uint8_t* answer) {
-    const uint32_t bytes = frame->bytes - SAMPLES, count = bytes / stream.in, out_bytes = count * stream.out;
-    const uint32_t fraction = stream.in_alignment - 1u; /* of a word: 0, 1 or 3 */
-    const uint32_t behind = out_bytes > bytes ? (out_bytes - bytes + fraction) & ~fraction : 0;
+    const struct halflsb_filter* filter = stream.filter;
+    const uint32_t bytes = frame->bytes - SAMPLES, count = bytes / stream.shape.in;
     uint8_t* samples = answer + RESPONSE_SAMPLES;
-    uint32_t total = 0, largest;
+    uint8_t* input = samples + behind_of(&stream.shape, count);
+    uint32_t total = 0, largest, out_bytes;
 
-    halflsb_frame_copy(frame, SAMPLES, samples + behind);
-    halflsb_order_words(samples + behind, bytes, stream.filter->input);
+    halflsb_frame_copy(frame, SAMPLES, input);
+    halflsb_order_words(input, bytes, filter->input);
     if (board->tick_bits != 0) total = board->ticks();
-    stream.filter->process(samples + behind, samples, (uint16_t)count);
+    out_bytes = run(filter, input, samples, count) * stream.shape.out;
     if (board->tick_bits != 0) total = board->ticks() - total;
     if (board->tick_bits < 32) total &= ((uint32_t)1 << board->tick_bits) - 1u;
-    halflsb_order_words(samples, out_bytes, stream.filter->output);
+    halflsb_order_words(samples, out_bytes, filter->output);
 
     largest = total / count + (total % count != 0);
     if (largest > TICKS_LARGEST_CAP) largest = TICKS_LARGEST_CAP;
@@ -102,7 +173,7 @@ static uint32_t process(const struct halflsb_board* board, const struct halflsb_
 
 static int samples_fit(const struct halflsb_frame* frame) {
     const uint32_t bytes = frame->bytes - SAMPLES;
-    return bytes != 0 && bytes % stream.in == 0 && bytes / stream.in <= stream.block_samples;
+    return bytes != 0 && bytes % stream.shape.in == 0 && bytes / stream.shape.in <= stream.block_samples;
 }
 
 static enum halflsb_reason set(const struct halflsb_board* board, const uint8_t* fields, uint32_t bytes) {
@@ -135,7 +206,7 @@ static enum halflsb_reason select_filter(const struct halflsb_board* board, cons
     if (fields[0] >= board->filter_count) return HALFLSB_NO_SUCH_THING;
     next = &board->filters[fields[0]];
     if (next->input != was->input || next->output != was->output || next->channels_in != was->channels_in ||
-        next->channels_out != was->channels_out)
+        next->channels_out != was->channels_out || changes_rate(next) || changes_rate(was))
         return HALFLSB_OUT_OF_RANGE;
     stream.filter = next;
     next->reset();

@@ -40,14 +40,30 @@ struct Row {
         state.samples += count;
         state.filters[number]->process(in, out, count);
     }
+    static std::uint16_t process_rate(const void* in, void* out, std::uint16_t count) {
+        ++state.blocks;
+        state.samples += count;
+        return state.filters[number]->process_rate(in, out, count);
+    }
     static int load(std::uint8_t table, std::uint16_t offset, const std::int32_t* values, std::uint8_t count) {
         return state.filters[number]->load(table, offset, values, count) ? 1 : 0;
     }
     static halflsb_filter offer() {
         const FilterParts& parts = state.filters[number]->parts();
         const auto channels = static_cast<std::uint8_t>(parts.channel_count());
-        return {parts.name.c_str(), HALFLSB_CALL, parts.format, parts.format, channels,
-                channels,           parts.tables, reset,        process,      load};
+        return {parts.name.c_str(),
+                HALFLSB_CALL,
+                parts.format,
+                parts.format,
+                channels,
+                channels,
+                parts.tables,
+                reset,
+                process,
+                load,
+                parts.up,
+                parts.down,
+                parts.process_rate ? process_rate : nullptr};
     }
 };
 

@@ -17,6 +17,7 @@
 #include "rigs/filters/moving_average_division.h"
 #include "rigs/filters/moving_average_f32.h"
 #include "rigs/filters/one_pole_narrow.h"
+#include "rigs/virtual-board/clean_rates.hpp"
 
 namespace halflsb::board {
 
@@ -185,6 +186,7 @@ std::vector<FilterParts> decision_filters() {
 std::vector<FilterParts> every_filter(const TableFaults& faults, AverageSetting& setting) {
     std::vector<FilterParts> filters = all_filters(faults, setting);
     for (FilterParts& filter : decision_filters()) filters.push_back(std::move(filter));
+    for (FilterParts& filter : rate_filters()) filters.push_back(std::move(filter));
     return filters;
 }
 

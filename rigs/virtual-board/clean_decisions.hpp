@@ -11,7 +11,7 @@ namespace halflsb::board {
 
 std::vector<FilterParts> decision_filters();
 
-/// Those of all_filters and then these.
+/// Those of all_filters, then these, then those of clean_rates.hpp.
 std::vector<FilterParts> every_filter(const TableFaults& faults, AverageSetting& setting);
 
 }  // namespace halflsb::board

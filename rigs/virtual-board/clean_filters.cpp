@@ -174,6 +174,7 @@ std::string what_it_is(const FilterParts& filter) {
         case FilterKind::channels:
             return filter.channels_alike ? "load-cell on each channel" : "load-cell on channel 1, settle on channel 2";
         case FilterKind::decision:
+        case FilterKind::rate:
             break;  // each says it itself
     }
     return "";

@@ -28,6 +28,7 @@ enum class FilterKind {
     comb,
     channels,  ///< several, each with a filter of its own
     decision,  ///< of clean_decisions.hpp
+    rate,      ///< of clean_rates.hpp
 };
 
 /// How the firmware came by its coefficients.
@@ -46,6 +47,9 @@ struct FilterParts {
     std::uint8_t tables = 0;
     std::function<void()> reset, reset_half;
     std::function<void(const void* in, void* out, std::uint16_t count)> process;
+    /// In the place of `process` where the rate changes: of `down` samples come `up`. One channel, no variant.
+    std::function<std::uint16_t(const void* in, void* out, std::uint16_t count)> process_rate = {};
+    std::uint16_t up = 1, down = 1;
     std::function<bool(std::uint8_t table, std::uint16_t offset, const std::int32_t* values, std::uint8_t count)> load;
     /// The same filter with a change of its arithmetic; reads the same tables. Empty for float.
     std::function<std::unique_ptr<CodeFilter>(const Deviation&)> variant;

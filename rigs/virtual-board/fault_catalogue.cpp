@@ -52,10 +52,10 @@ const std::vector<FaultEntry> entries = {
      pass_by<PassageFault::one_sample_late>},
     {"S02", "window-15", "", "the window is one sample short, the divisor is not", Shows::fixed_average,
      [](F faults, N, Ms) { faults.deviation.points_less = 1; }},
-    {"S06", "half-reset", "", "a reset clears the first half of the state", Shows::any_filter,
+    {"S06", "half-reset", "", "a reset clears the first half of the state", Shows::steady_rate,
      pass_by<PassageFault::reset_clears_half>},
-    {"S07", "no-reset", "", "a reset does nothing", Shows::any_filter, pass_by<PassageFault::never_reset>},
-    {"S11", "state-lost", "", "the state is lost at each block boundary", Shows::any_filter,
+    {"S07", "no-reset", "", "a reset does nothing", Shows::steady_rate, pass_by<PassageFault::never_reset>},
+    {"S11", "state-lost", "", "the state is lost at each block boundary", Shows::steady_rate,
      pass_by<PassageFault::lost_at_block_boundary>},
     {"S15", "shared-state", "", "both channels pass one filter and share its state", Shows::two_like_channels,
      [](F faults, N, Ms) { faults.channels.shared_state = true; }},
@@ -63,7 +63,7 @@ const std::vector<FaultEntry> entries = {
      Shows::two_channels, [](F faults, N, Ms) { faults.channels.crosstalk = true; }},
     {"channels-swapped", "", "", "each channel's filter gets the other channel's samples", Shows::two_channels,
      [](F faults, N, Ms) { faults.channels.swapped = true; }},
-    {"S20", "bypass", "", "the output is the input", Shows::any_filter, pass_by<PassageFault::bypass>},
+    {"S20", "bypass", "", "the output is the input", Shows::steady_rate, pass_by<PassageFault::bypass>},
     {"N01", "offset-kept", "", "the mid-code is not subtracted from the input", Shows::offset_binary,
      [](F faults, N, Ms) { faults.deviation.offset_kept = true; }},
     {"N02", "offset-missing", "", "the mid-code is not added to the output, which stays signed", Shows::offset_binary,
@@ -168,6 +168,8 @@ bool shows_in(Shows shows, const FilterParts& filter) {
                            [shows](const FilterParts& channel) { return shows_in(shows, channel); });
     }
     switch (shows) {
+        case Shows::steady_rate:
+            return kind != FilterKind::rate;
         case Shows::fixed_average:
             return kind == FilterKind::average;
         // 30 bits are dropped from a q31 section: no stimulus of ours meets a tie there.

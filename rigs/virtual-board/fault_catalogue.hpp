@@ -34,6 +34,7 @@ struct Faults {
 /// Which filters a fault can be seen in.
 enum class Shows {
     any_filter,
+    steady_rate,
     line,
     fixed_average,
     tie,

@@ -27,6 +27,14 @@ private:
     FilterParts parts_;
 };
 
+/// In front of a filter that changes the rate faults are put around this.
+class Taken : public CodeFilter {
+public:
+    void reset() override {}
+    void reset_half() override {}
+    std::int32_t step(std::int32_t x) override { return x; }
+};
+
 }  // namespace
 
 OfferedFilter::OfferedFilter(FilterParts parts, const Faults& faults)
@@ -45,7 +53,9 @@ OfferedFilter::OfferedFilter(FilterParts parts, const Faults& faults)
     }
     for (const FilterParts& channel : channels) {
         std::unique_ptr<CodeFilter> filter;
-        if (deviates(channel)) {
+        if (channel.process_rate) {
+            filter = std::make_unique<Taken>();
+        } else if (deviates(channel)) {
             filter = channel.variant(faults.deviation);
         } else {
             filter = std::make_unique<CleanSteps>(channel);
@@ -56,7 +66,7 @@ OfferedFilter::OfferedFilter(FilterParts parts, const Faults& faults)
 }
 
 void OfferedFilter::reset() {
-    if (faulty_.empty()) parts_.reset();
+    if (faulty_.empty() || parts_.process_rate) parts_.reset();
     for (const auto& channel : faulty_) channel->reset();
 }
 
@@ -80,18 +90,30 @@ void OfferedFilter::process(const void* in, void* out, std::uint16_t count) {
     }
 }
 
+std::uint16_t OfferedFilter::process_rate(const void* in, void* out, std::uint16_t count) {
+    if (faulty_.empty()) return parts_.process_rate(in, out, count);
+    faulty_[0]->begin_block();
+    std::vector<std::int16_t> taken(count);  // the sets of these filters are q15
+    for (std::size_t i = 0; i < count; ++i)
+        put_code(taken.data(), i, parts_.format, faulty_[0]->step(code_at(in, i, parts_.format)));
+    return parts_.process_rate(taken.data(), out, count);
+}
+
 bool OfferedFilter::load(std::uint8_t table, std::uint16_t offset, const std::int32_t* values, std::uint8_t count) {
     return parts_.load != nullptr && parts_.load(table, offset, values, count);
 }
 
 std::vector<FilterParts> choose_filters(std::string_view choice, std::vector<FilterParts> all, std::string& problem) {
-    const auto in_set = [&](bool decisions) {
+    const auto set_of = [](const FilterParts& filter) -> std::string_view {
+        if (filter.kind == FilterKind::decision) return "decisions";
+        return filter.kind == FilterKind::rate ? "rates" : "all";
+    };
+    if (choice == "all" || choice == "decisions" || choice == "rates") {
         std::vector<FilterParts> set;
         std::copy_if(all.begin(), all.end(), std::back_inserter(set),
-                     [&](const FilterParts& f) { return (f.kind == FilterKind::decision) == decisions; });
+                     [&](const FilterParts& filter) { return set_of(filter) == choice; });
         return set;
-    };
-    if (choice == "all" || choice == "decisions") return in_set(choice == "decisions");
+    }
     if (choice == "cw-7") choice = checkweigher;
     std::vector<FilterParts> chosen;
     while (true) {
@@ -99,7 +121,7 @@ std::vector<FilterParts> choose_filters(std::string_view choice, std::vector<Fil
         const std::string_view name = choice.substr(0, comma);
         const auto found = std::find_if(all.begin(), all.end(), [&](const auto& f) { return f.name == name; });
         if (found == all.end()) {
-            std::vector<std::string_view> known = {"all", "cw-7", "decisions"};
+            std::vector<std::string_view> known = {"all", "cw-7", "decisions", "rates"};
             for (const FilterParts& filter : all) known.push_back(filter.name);
             problem = "no filter is called \"" + std::string(name) + "\"; the nearest is \"" +
                       std::string(nearest(name, known)) + "\"";

@@ -18,6 +18,8 @@ public:
     void reset();
     /// `out` may be `in`, or overlap it as the kit's answers do.
     void process(const void* in, void* out, std::uint16_t count);
+    /// Of a filter that changes the rate, in its place: how many were written.
+    std::uint16_t process_rate(const void* in, void* out, std::uint16_t count);
     bool load(std::uint8_t table, std::uint16_t offset, const std::int32_t* values, std::uint8_t count);
 
 private:
@@ -27,8 +29,8 @@ private:
     Format out_format_;
 };
 
-/// `choice`: "all" (without the decisions), "cw-7", "decisions", or names with commas between. An empty list: no such
-/// filter, and `problem` says so.
+/// `choice`: "all" (without the next two), "cw-7", "decisions", "rates", or names with commas between. An empty list:
+/// no such filter, and `problem` says so.
 std::vector<FilterParts> choose_filters(std::string_view choice, std::vector<FilterParts> all, std::string& problem);
 
 }  // namespace halflsb::board

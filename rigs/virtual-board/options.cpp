@@ -58,7 +58,7 @@ auto flag(bool Options::*member) {
 const std::vector<Option>& table() {
     static const std::vector<Option> options = {
         {"--link", "PATH", "make a symbolic link to the device, remove it at the end", into(&Options::link)},
-        {"--filter-set", "NAMES", "all, cw-7, decisions, or names with commas between; default all",
+        {"--filter-set", "NAMES", "all, cw-7, decisions, rates, or names with commas between; default all",
          into(&Options::filter_set)},
         {"--fault", "NAME[=ARG]", "a fault of --list-faults; may be repeated",
          [](const std::string& value, Options& o) {

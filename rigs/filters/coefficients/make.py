@@ -71,6 +71,21 @@ def settle_sections():
     return shared
 
 
+def quarter_taps():
+    """Keeps 100 Hz of 1200 when each fourth sample is returned; 24 taps, more than the factor and a multiple of it."""
+    return signal.firwin(24, 110.0, fs=SAMPLE_RATE_HZ)
+
+
+def triple_taps():
+    """Takes the images out when 1200 Hz becomes 3600: 24 taps, 8 for each phase, whose sum is the factor."""
+    return 3.0 * signal.firwin(24, 500.0, fs=3.0 * SAMPLE_RATE_HZ)
+
+
+def droop_taps():
+    """Lifts what a CIC of order 3 and factor 8 lets down, before each second sample is returned."""
+    return [-0.05, 0.0, 0.3, 0.5, 0.3, 0.0, -0.05]
+
+
 def text_of(numbers):
     # 12 decimals: the last bits of the double differ between versions of the design program, and so does what should
     # be zero. The firmware's 30 fraction bits need 10.
@@ -84,18 +99,18 @@ def header(name, what, body):
     )
 
 
-def taps_files(name, what, taps):
+def taps_files(name, what, taps, fraction_bits=15):
     text = text_of(taps)
     taps = [float(line) for line in text.split()]
     symbol = name.replace("-", "_")
-    codes = [stored(tap, 15) for tap in taps]
+    codes = [stored(tap, fraction_bits) for tap in taps]
     assert all(-32768 <= code <= 32767 for code in codes)
     rows = [codes[i : i + 10] for i in range(0, len(codes), 10)]
     lines = ",\n    ".join(", ".join(str(code) for code in row) for row in rows)
     body = (
         "#include <stdint.h>\n\n"
         f"#define {symbol.upper()}_TAPS {len(codes)}\n"
-        f"static const int16_t {symbol}_taps[{symbol.upper()}_TAPS] = {{ /* Q15 */\n    {lines}}};\n"
+        f"static const int16_t {symbol}_taps[{symbol.upper()}_TAPS] = {{ /* Q{fraction_bits} */\n    {lines}}};\n"
     )
     return {name + ".txt": text, name + ".h": header(name, what, body)}
 
@@ -134,6 +149,9 @@ def all_files():
     files |= taps_files("smoothing", "31-tap linear-phase low-pass, corner 120 Hz at 1200 Hz", smoothing_taps())
     files |= taps_files("quick-smoothing", "24-tap low-pass whose taps are not symmetric", quick_smoothing_taps())
     files |= taps_files("infeed", "6-tap difference of two means, gain 5.2 at most", infeed_taps())
+    files |= taps_files("quarter", "24-tap low-pass for each fourth sample", quarter_taps())
+    files |= taps_files("triple", "24-tap low-pass of three times the rate, gain 3", triple_taps(), 14)
+    files |= taps_files("droop", "7-tap compensation of a CIC's droop", droop_taps())
     files |= sections_files("mains-notch", "50 Hz notch at 1200 Hz, quality 5", notch_sections(), ["q15"])
     files |= sections_files(
         "settle", "Butterworth low-pass, order 4, corner 0.02 of the sample rate", settle_sections(), ["q15", "q31", "f32"]
