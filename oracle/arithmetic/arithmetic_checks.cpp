@@ -118,8 +118,12 @@ std::optional<Error> accumulator_too_narrow(const DescribedStage& described) {
             most = std::max(in.fraction_bits, target.fraction_bits + described.coefficient_fraction_bits);
         const int fraction = accumulator_fraction_bits_of(described, most, target.fraction_bits);
         largest = 0.0;
+        // Products of direct-2 are those of its state, whose words may end before the input does.
+        double largest_value = std::ldexp(largest_input, -in.fraction_bits);
+        if (is_recursive && described.structure == Structure::direct_2 && described.state.bits != wide_bits)
+            largest_value = std::min(largest_value, -lowest_value(described.state));
         for (const NamedCoefficient& c : named_coefficients(described)) {
-            const double product = std::ldexp(std::fabs(c.value), fraction - in.fraction_bits) * largest_input;
+            const double product = std::ldexp(std::fabs(c.value), fraction) * largest_value;
             if (product <= largest) continue;
             largest = product;
             what = "one product, that of " + c.name + " = " + number_text(c.value);

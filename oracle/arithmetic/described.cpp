@@ -115,6 +115,13 @@ Port port_between(const FilterStage& stage, const Port& in, bool& is_said) {
     return port;
 }
 
+/// The middle one of an odd number of words, in words as fine, is one of them: nothing is rounded.
+bool rounds_nothing(const DescribedStage& stage) {
+    const auto* median = std::get_if<Median>(&stage.stage.design);
+    return median != nullptr && median->points % 2 != 0 && stage.number == NumberKind::integer &&
+           stage.out.word.fraction_bits >= stage.in.word.fraction_bits;
+}
+
 FilterStage passing_stage() {
     FilterStage stage;
     stage.design = Fir{{1.0}};
@@ -127,13 +134,39 @@ Error is_missing(std::string_view word, std::string problem, std::string remedy)
     return {ErrorKind::input, std::string(word), std::move(problem), std::move(remedy)};
 }
 
-std::optional<Error> missing_in(const DescribedStage& stage) {
-    if (stage.stage.initial != Initial::zeros) {
+/// Starts whose bits docs/arithmetic.md does not define: where several ways to hold the state are as good.
+std::optional<Error> undefined_start(const DescribedStage& stage) {
+    const Initial initial = stage.stage.initial;
+    if (initial == Initial::zeros) return std::nullopt;
+    const Family family = family_of(stage.stage);
+    const bool is_float = stage.number == NumberKind::float32;
+    const bool is_kept = family == Family::one_pole && stage.structure != Structure::direct_1;
+    const bool is_filled = family == Family::average || family == Family::median || family == Family::fir;
+    if ((!is_kept && !is_filled) || std::holds_alternative<FirInterpolator>(stage.stage.design)) {
         return is_missing("initial", "a start other than zeros has no twin",
                           "leave initial out, or judge by an error rule");
     }
+    if (stage.fraction_saving && family != Family::median) {
+        return is_missing("initial", "with fraction_saving a start other than zeros has no twin",
+                          "leave initial or fraction_saving out, or judge by an error rule");
+    }
+    if (initial == Initial::growing && stage.division != Division::divide) {
+        return is_missing("initial", "only an average that divides grows: the others have one divisor",
+                          "give division = \"divide\", or judge by an error rule");
+    }
+    if (is_kept && !is_float && stage.state.fraction_bits < stage.in.word.fraction_bits) {
+        return is_missing("initial", "states coarser than the input do not hold its first sample",
+                          "give state_fraction_bits = " + std::to_string(stage.in.word.fraction_bits) +
+                              " or more, or judge by an error rule");
+    }
+    return std::nullopt;
+}
+
+std::optional<Error> missing_in(const DescribedStage& stage) {
+    if (auto error = undefined_start(stage)) return error;
     if (stage.number == NumberKind::float32 && family_of(stage.stage) == Family::cic) {
-        return is_missing("number", "a cic in float32 has no twin", "its registers wrap: give number = \"integer\"");
+        return is_missing("number", "a cic in float32 has no twin: what its integrators lose no comb brings back",
+                          "give number = \"integer\" and words of whole numbers, or judge by an error rule");
     }
     if (!stage.coefficients_are_said) {
         return is_missing("coefficient_fraction_bits", "coefficient_fraction_bits is not said",
@@ -185,6 +218,7 @@ DescribedOrProblem describe(const FilterChain& given, const SampleFormat& input,
         DescribedStage stage = described_stage(chain[i], in, out);
         stage.words_are_said = words_are_said;
         if (given.empty() && out.word.fraction_bits >= in.word.fraction_bits) stage.rounding_is_said = true;
+        if (rounds_nothing(stage)) stage.rounding_is_said = true;
         if (auto error = contradiction_in(stage)) {
             result.problem = ArithmeticProblem{i, *error};
             return result;

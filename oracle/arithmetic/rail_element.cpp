@@ -37,6 +37,7 @@ RailElement::RailElement(const ChainElement& element, const NodeBounds& bounds, 
                              std::holds_alternative<MovingAverage>(element.exact.front().design) ||
                              element.has_sums() || element.comb() != nullptr;
     if (!element.is_integer() || !is_one_rate) {
+        if (element.is_integer()) of_rate_changer(element.exact.front().design);
         add_output(out_error_, false);
     } else if (const auto* fir = std::get_if<Fir>(&element.exact.front().design)) {
         of_fir(*fir);
@@ -198,6 +199,31 @@ void RailElement::of_transposed() {
         add_sum("accumulator of " + name, sum_of(stage.state.fraction_bits), place, level_of(place), error_of(place),
                 lost, std::move(terms));
         add(name, stage.state, place, level_of(place), error_of(place), lost);
+    }
+}
+
+// What such an element sums on its way is not followed: where a word of it could be left nothing is claimed at all.
+void RailElement::of_rate_changer(const FilterDesign& design) {
+    const DescribedStage& stage = *element_.stage;
+    const auto never_safe = [&] { rails_.back().lowest = HUGE_VAL; };
+    const auto of_taps = [&](const std::vector<double>& taps) {
+        const int products = element_.in.fraction_bits + stage.coefficient_fraction_bits;
+        const Word sum = accumulator(products, stage.out.word.fraction_bits);
+        if (sum.bits == wide_bits) return;
+        double size = 0.0;
+        for (const double tap : taps) size += std::fabs(tap);
+        const double level = std::max(input_.level, -lowest_value(element_.in));
+        const double drift = static_cast<double>(taps.size() + 1) * std::max(step_of(sum), step_of(stage.out.word));
+        add("accumulator", sum, {Source::sum}, size * level, size * input_.error + drift, RailEffect::lost);
+        never_safe();
+    };
+    if (const auto* decimator = std::get_if<FirDecimator>(&design)) of_taps(decimator->taps);
+    if (const auto* interpolator = std::get_if<FirInterpolator>(&design)) of_taps(interpolator->taps);
+    // Integrators that saturate never come back.
+    if (std::holds_alternative<CicDecimator>(design) && stage.state.overflow == Overflow::saturate &&
+        stage.state.bits != wide_bits) {
+        add("registers", stage.state, {Source::sum}, HUGE_VAL, 0.0, RailEffect::lost);
+        never_safe();
     }
 }
 

@@ -66,6 +66,7 @@ private:
     void of_loop();
     void of_direct_2();
     void of_transposed();
+    void of_rate_changer(const FilterDesign& design);
     void add_output(double error, bool comes_back);
 
     Word accumulator(int terms, int target) const;

@@ -2,6 +2,7 @@
 
 #include "oracle/arithmetic/kept_samples.hpp"
 #include "oracle/arithmetic/stage_twin.hpp"
+#include "oracle/arithmetic/twin_start.hpp"
 #include "oracle/filters/coefficients.hpp"
 
 namespace halflsb {
@@ -165,6 +166,9 @@ void append_stage(const DescribedStage& stage, std::string name, StageTwins& twi
     const FilterStage coefficients =
         stage.number == NumberKind::float32 ? with_rounded_coefficients(stage.stage) : stage.stage;
     std::visit(StageMaker(stage, std::move(name), twins), coefficients.design);
+    // describe() lets that be said of stages alone that are one twin.
+    if (stage.stage.initial == Initial::first_sample)
+        twins.back() = started_with_first_sample(std::move(twins.back()), stage);
 }
 
 }  // namespace
@@ -173,7 +177,6 @@ std::unique_ptr<Twin> make_twin(const DescribedChain& chain) {
     if (chain.missing || chain.stages.empty()) return nullptr;
     StageTwins twins;
     for (std::size_t i = 0; i < chain.stages.size(); ++i) {
-        if (chain.stages[i].stage.initial != Initial::zeros) return nullptr;
         append_stage(chain.stages[i], "stage " + std::to_string(i + 1) + ", ", twins);
     }
     for (const auto& twin : twins) {

@@ -24,6 +24,7 @@ public:
     CicTwin(const CicPlan& plan, const Quotient& quotient, const Word& out, const std::string& name)
         : plan_(plan),
           quotient_(quotient),
+          last_(name + (plan.decimates ? "comb " : "integrator ") + std::to_string(plan.order), plan.registers),
           output_(name + "output", out),
           integrals_(plan.order, 0),
           past_(plan.order, History<std::int64_t>(plan.delay)),
@@ -38,6 +39,7 @@ public:
         for (auto* list : {&integrators_, &combs_}) {
             for (Register<Int128>& word : *list) word.reset();
         }
+        last_.reset();
         output_.reset();
         std::fill(integrals_.begin(), integrals_.end(), 0);
         for (auto& past : past_) past.reset();
@@ -89,11 +91,13 @@ public:
     }
 
     void append_reaches(std::vector<NodeReach>& reaches) const override {
-        // What wraps on its way says nothing; the last register is the one that must hold.
+        // What wraps on its way says nothing; the last register is the one that must hold, and what it holds is right.
         if (plan_.registers.overflow == Overflow::saturate) {
             for (const auto* list : {&integrators_, &combs_}) {
                 for (const Register<Int128>& word : *list) reaches.push_back(word.reach());
             }
+        } else {
+            reaches.push_back(last_.reach());
         }
         reaches.push_back(output_.reach());
     }
@@ -113,12 +117,15 @@ private:
         }
         return number;
     }
-    std::int64_t returned(Int128 number) { return static_cast<std::int64_t>(output_.hold(quotient_(number))); }
+    std::int64_t returned(Int128 number) {
+        last_.hold(number);
+        return static_cast<std::int64_t>(output_.hold(quotient_(number)));
+    }
 
     CicPlan plan_;
     Quotient quotient_;
     std::vector<Register<Int128>> integrators_, combs_;
-    Register<Int128> output_;
+    Register<Int128> last_, output_;  ///< last: what the last register holds, after its wrap
     std::vector<Int128> integrals_;
     std::vector<History<std::int64_t>> past_;  ///< what went into each comb
     KeptSamples kept_;

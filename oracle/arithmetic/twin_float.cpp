@@ -245,6 +245,7 @@ public:
           is_running_(stage.structure == Structure::running_sum),
           oldest_first_(stage.summation == Summation::oldest_first),
           multiplies_(stage.division == Division::reciprocal),
+          is_growing_(stage.stage.initial == Initial::growing),
           inputs_(points_) {}
 
 private:
@@ -255,18 +256,24 @@ private:
             sum_ = inputs_.ago(oldest_first_ ? points_ : 1);
             for (std::size_t k = 1; k < points_; ++k) sum_ += inputs_.ago(oldest_first_ ? points_ - k : k + 1);
         }
+        if (is_growing_ && samples_ < divisor_) return sum_ / (samples_ += 1.0f);
         return multiplies_ ? sum_ * reciprocal_ : sum_ / divisor_;
     }
     void forget() override {
         inputs_.reset();
-        sum_ = 0.0f;
+        sum_ = samples_ = 0.0f;
     }
     std::vector<float> floats() const override {
         std::vector<float> values = newest_first(inputs_, is_running_ ? points_ : points_ - 1);
         if (is_running_) values.push_back(sum_);
+        if (is_growing_) values.push_back(samples_);
         return values;
     }
     void set_floats(std::span<const float> values) override {
+        if (is_growing_) {
+            samples_ = values.back();
+            values = values.first(values.size() - 1);
+        }
         if (is_running_) {
             sum_ = values.back();
             values = values.first(points_);
@@ -276,9 +283,9 @@ private:
 
     std::size_t points_;
     float divisor_, reciprocal_;
-    bool is_running_, oldest_first_, multiplies_;
+    bool is_running_, oldest_first_, multiplies_, is_growing_;
     History<float> inputs_;
-    float sum_ = 0.0f;
+    float sum_ = 0.0f, samples_ = 0.0f;  ///< samples: a whole number up to points, of an average that grows
 };
 
 std::vector<float> in_float(const std::vector<double>& numbers, double sign) {

@@ -9,9 +9,13 @@ namespace {
 
 class MovingAverageTwin final : public StageTwin {
 public:
-    MovingAverageTwin(const DescribedStage& stage, const Quotient& quotient, const std::string& name)
+    /// `division` is that of all points.
+    MovingAverageTwin(const DescribedStage& stage, const Division128& division, const Quotient& quotient,
+                      const std::string& name)
         : is_running_(stage.structure == Structure::running_sum),
+          is_growing_(stage.stage.initial == Initial::growing),
           oldest_first_(stage.summation == Summation::oldest_first),
+          division_(division),
           quotient_(quotient),
           accumulator_(name + "accumulator",
                        {stage.accumulator_bits, stage.in.word.fraction_bits, stage.accumulator_overflow}),
@@ -24,6 +28,7 @@ public:
         inputs_.reset();
         quotient_.reset();
         sum_ = 0;
+        samples_ = 0;
     }
 
     void process(std::span<const std::int64_t> in, std::span<std::int64_t> out) override {
@@ -35,7 +40,7 @@ public:
             }
             inputs_.push(x);
             if (!is_running_) sum_ = fresh_sum();
-            out[i] = static_cast<std::int64_t>(output_.hold(quotient_(sum_)));
+            out[i] = static_cast<std::int64_t>(output_.hold(divided_sum()));
         }
     }
 
@@ -44,17 +49,24 @@ public:
         inputs_.for_each_newest_first(words_of_inputs(), [&](std::int64_t word) { state.push_back(word); });
         if (is_running_) state.push_back(static_cast<std::int64_t>(sum_));
         if (quotient_.saves_fraction()) state.push_back(quotient_.rest());
+        if (is_growing_) state.push_back(samples_);
     }
 
     bool take_state(std::span<const std::int64_t>& state) override {
         const std::size_t inputs = words_of_inputs();
-        if (state.size() < inputs + (is_running_ ? 1 : 0) + (quotient_.saves_fraction() ? 1 : 0)) return false;
+        if (state.size() < inputs + (is_running_ ? 1 : 0) + (quotient_.saves_fraction() || is_growing_ ? 1 : 0))
+            return false;
         inputs_.set(state.first(inputs));
         state = state.subspan(inputs);
         if (is_running_) {
             sum_ = state.front();
             if (!accumulator_.holds(state.front())) return false;
             state = state.subspan(1);
+        }
+        if (is_growing_) {
+            samples_ = state.front();
+            state = state.subspan(1);
+            return samples_ >= 0 && samples_ <= division_.divisor;
         }
         if (!quotient_.saves_fraction()) return true;
         const std::int64_t rest = state.front();
@@ -79,7 +91,18 @@ private:
         return sum;
     }
 
-    bool is_running_, oldest_first_;
+    /// By the samples so far where there are fewer than points and the average grows.
+    Int128 divided_sum() {
+        if (!is_growing_ || samples_ == division_.divisor) return quotient_(sum_);
+        Division128 division = division_;
+        division.divisor = ++samples_;
+        auto so_far = Quotient::of(division);
+        return so_far ? (*so_far)(sum_) : 0;  // a smaller divisor needs no more bits than that of all points
+    }
+
+    bool is_running_, is_growing_, oldest_first_;
+    std::int64_t samples_ = 0;  ///< up to points, of an average that grows
+    Division128 division_;
     Quotient quotient_;
     Int128 sum_ = 0;
     Register<Int128> accumulator_, output_;
@@ -103,7 +126,7 @@ std::unique_ptr<StageTwin> make_moving_average_twin(const DescribedStage& stage,
     }
     const auto quotient = Quotient::of(division);
     if (!quotient) return nullptr;
-    return std::make_unique<MovingAverageTwin>(stage, *quotient, name);
+    return std::make_unique<MovingAverageTwin>(stage, division, *quotient, name);
 }
 
 }  // namespace halflsb

@@ -101,6 +101,8 @@ const Recipe& signal_recipe() {
                      "left out full_scale_unit serves, if both sides have one unit, kind of value and full scale."},
             {.name = "output_per_input",
              .type = ParameterType::real,
+             .minimum = -1e12,
+             .maximum = 1e12,
              .help =
                  "Value out per value in at gain 1; not 0. For input and output of different kinds of value (q; i and "
                  "u; f), and required there."},

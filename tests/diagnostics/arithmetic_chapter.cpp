@@ -89,8 +89,17 @@ const std::vector<Body> not_exact = {
     {"exact, and the words between stages are not said", fir,
      "coefficient_fraction_bits = 15\nrounding = \"floor\"\n[[filter]]\n" + median},
     {"exact, and a CIC in float32", "kind = \"cic-decimator\"\norder = 4\nfactor = 4\n", "", "f32"},
-    {"exact, and no start from zeros", fir + "initial = \"first-sample\"\n",
+    {"exact, and no start from zeros",
+     "kind = \"comb\"\ndelay_samples = 2\nforward = 0.5\ninitial = \"first-sample\"\n",
      "coefficient_fraction_bits = 15\nrounding = \"floor\"\n"},
+    {"exact, a saved fraction and no start from zeros", fir + "initial = \"first-sample\"\n",
+     "coefficient_fraction_bits = 15\nrounding = \"floor\"\nfraction_saving = \"on\"\n"},
+    {"exact, and an average that grows by its reciprocal",
+     "kind = \"moving-average\"\npoints = 16\ninitial = \"growing\"\n",
+     "division = \"reciprocal\"\ncoefficient_fraction_bits = 15\nrounding = \"floor\"\n"},
+    {"exact, and states too coarse to hold the first sample",
+     "kind = \"one-pole\"\nshift_bits = 3\ninitial = \"first-sample\"\n",
+     "rounding = \"floor\"\nstate_bits = 16\nstate_fraction_bits = 8\n"},
 };
 
 Parts plan_with(const Body& body) {

@@ -148,6 +148,7 @@ class Chain:
 
     def __init__(self, stages):
         self.stages, self.filters = stages, [made_filter(stage) for stage in stages]
+        self.waiting = [stage.words.get("initial") == "first-sample" for stage in stages]
 
     def process(self, codes):
         with np.errstate(all="ignore"):
@@ -156,12 +157,20 @@ class Chain:
                 values = [y for x in values for y in self.through(stage, each, x)]
             return [self.code_of(value) for value in values]
 
-    @staticmethod
-    def through(stage, each, x):
+    def begin(self, each, x):
+        """The past of a stage that starts with its first sample."""
+        number = self.filters.index(each)
+        if self.waiting[number]:
+            each.start_with(x)
+            self.waiting[number] = False
+
+    def through(self, stage, each, x):
         if stage.number != "float32":
+            self.begin(each, x)
             return each.step(x)
         if not stage.input.is_float:
             x = np.float32(float(Fraction(x) / Fraction(2) ** stage.input.fraction))
+        self.begin(each, x)
         if stage.output.is_float:
             return [np.float32(float(y) * 2.0**stage.output.fraction) for y in each.step(x)]
         return [twin_float.to_words(y, stage.output, stage.rounding, stage.output_overflow) for y in each.step(x)]

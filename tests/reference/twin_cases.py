@@ -48,6 +48,20 @@ def scale_between(draw, source, target):
     return 2.0 ** (span + draw.whole(-2, 2))
 
 
+def start_of(draw, kind, words, said, source, target, floats):
+    """"initial" where docs/arithmetic.md defines its bits."""
+    if said.get("fraction_saving") == "on" and kind != "median":
+        return None
+    if kind == "moving-average" and said.get("division", "divide") == "divide" and draw.chance(0.5):
+        return "growing"
+    if kind in ("moving-average", "median", "fir", "fir-decimator"):
+        return "first-sample"
+    if kind != "one-pole" or said.get("structure") == "direct-1":
+        return None
+    state = said.get("state_fraction_bits", target.fraction)
+    return "first-sample" if floats or state >= source.fraction else None
+
+
 def stages_to(draw, kinds, source_name, output_name, per_input):
     """(kind, words, arithmetic) of each stage, or None where the draw does not go together."""
     stages, source = [], Port.of(source_name)
@@ -67,6 +81,9 @@ def stages_to(draw, kinds, source_name, output_name, per_input):
             said = integer_arithmetic(draw, kind, words, source, target)
         if said is None:
             return None
+        start = start_of(draw, kind, words, said, source, target, floats) if draw.chance(0.3) else None
+        if start:
+            words = words | {"initial": start}
         if not last and (target_name != "f32" or draw.chance(0.5)):
             said["stage_format"] = target_name
         stages.append((kind, words, said))

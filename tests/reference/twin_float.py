@@ -89,6 +89,9 @@ class Fir:
         if stage.summation == "oldest-first":
             self.order = self.order[::-1]
 
+    def start_with(self, x):
+        self.past.extend([x] * len(self.taps))
+
     def step(self, x):
         self.past.appendleft(x)
         return [self.op.sum([(self.taps[k], self.past[k]) for k in self.order])]
@@ -117,8 +120,15 @@ class MovingAverage:
     def __init__(self, stage):
         self.stage, self.points = stage, stage.words["points"]
         self.past, self.total = deque([F32(0)] * self.points, self.points), F32(0)
+        self.taken = 0
+
+    def start_with(self, x):
+        self.past.extend([x] * self.points)
+        for _ in range(self.points):
+            self.total = self.total + x
 
     def step(self, x):
+        self.taken += 1
         oldest = self.past[-1]
         self.past.appendleft(x)
         if self.stage.structure == "running-sum":
@@ -130,6 +140,8 @@ class MovingAverage:
                 self.total = self.total + value
         if self.stage.division == "reciprocal":
             return [self.total * (F32(1) / F32(self.points))]
+        if self.stage.words.get("initial") == "growing":
+            return [self.total / F32(min(self.taken, self.points))]
         return [self.total / F32(self.points)]
 
 
@@ -204,6 +216,9 @@ class OnePole:
         self.stage, self.op, self.s = stage, Operations(stage.fused), F32(0)
         self.c = Coefficients(stage)(stage.one_pole_coefficient)
 
+    def start_with(self, x):
+        self.s = x
+
     def step(self, x):
         if self.stage.structure == "difference":
             self.s = self.op.add_product(self.s, self.c, x - self.s)
@@ -217,6 +232,9 @@ class Median:
 
     def __init__(self, stage):
         self.past = deque([F32(0)] * stage.words["points"], stage.words["points"])
+
+    def start_with(self, x):
+        self.past.extend([x] * len(self.past))
 
     def step(self, x):
         self.past.appendleft(x)

@@ -63,6 +63,9 @@ class Fir:
         self.term_bits = stored.f + stage.input.fraction
         self.sum = Adder(stage, [self.term_bits], stage.output.fraction)
 
+    def start_with(self, x):
+        self.past.extend([x] * len(self.taps))
+
     def step(self, x):
         self.past.appendleft(x)
         return [self.stage.out(self.sum.total([(1, self.taps[k] * self.past[k], self.term_bits) for k in self.order]))]
@@ -92,7 +95,7 @@ class MovingAverage:
     def __init__(self, stage):
         self.stage, self.points = stage, stage.words["points"]
         self.past, self.sum, self.remainder = deque([0] * self.points, self.points), 0, 0
-        self.factor, self.divisor = 1, self.points
+        self.factor, self.divisor, self.taken = 1, self.points, 0
         if stage.division == "reciprocal":
             self.factor = rounded(Fraction(2**stage.coefficient_fraction_bits, self.points), stage.coefficient_rounding)
             self.divisor = 2**stage.coefficient_fraction_bits
@@ -102,7 +105,16 @@ class MovingAverage:
     def hold(self, number):
         return held(number, self.stage.accumulator_bits, self.stage.accumulator_overflow)
 
+    def start_with(self, x):
+        self.past.extend([x] * self.points)
+        for _ in range(self.points):
+            self.sum = self.hold(self.sum + x)
+
     def step(self, x):
+        self.taken += 1
+        divisor = self.divisor
+        if self.stage.words.get("initial") == "growing":
+            divisor = divisor // self.points * min(self.taken, self.points)
         if self.stage.structure == "running-sum":
             self.sum = self.hold(self.hold(self.sum - self.past[-1]) + x)
             self.past.appendleft(x)
@@ -112,7 +124,7 @@ class MovingAverage:
             for value in self.past if self.stage.summation == "newest-first" else reversed(self.past):
                 self.sum = self.hold(self.sum + value)
         number = self.sum * self.factor + self.remainder
-        y = divided(number, self.divisor, self.stage.rounding)
+        y = divided(number, divisor, self.stage.rounding)
         if self.stage.fraction_saving:
             self.remainder = number - y * self.divisor
         return [self.stage.out(y)]
@@ -224,6 +236,9 @@ class OnePole:
         self.common = common
         self.change = Adder(stage, [self.f + common], self.s_fraction)
 
+    def start_with(self, x):
+        self.s = self.stage.state(x << (self.s_fraction - self.x_fraction))
+
     def step(self, x):
         if self.stage.structure == "difference":
             difference = (x << (self.common - self.x_fraction)) - (self.s << (self.common - self.s_fraction))
@@ -239,6 +254,9 @@ class Median:
     def __init__(self, stage):
         self.stage, points = stage, stage.words["points"]
         self.past = deque([0] * points, points)
+
+    def start_with(self, x):
+        self.past.extend([x] * len(self.past))
 
     def step(self, x):
         self.past.appendleft(x)

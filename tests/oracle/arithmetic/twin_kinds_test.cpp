@@ -125,11 +125,14 @@ TEST_CASE("iir: a recursion of the third order in each structure", "[twin]") {
     CHECK(direct != transposed);
 }
 
-TEST_CASE("twin: there is none of a start other than zeros, nor of a cic in float32", "[twin]") {
-    auto chain = described_chain({median(3, {word("rounding", "floor")})});
-    CHECK(make_twin(chain) != nullptr);
-    chain.stages[0].stage.initial = Initial::first_sample;
-    CHECK(make_twin(chain) == nullptr);
+TEST_CASE("twin: there is none of a comb that starts other than from zeros, nor of a cic in float32", "[twin]") {
+    auto comb = promised_stage("comb", {number("delay_samples", 2), {"forward", 0.5}},
+                               {word("rounding", "floor"), number("coefficient_fraction_bits", 8)});
+    CHECK(make_twin(described_chain({comb})) != nullptr);
+    comb.initial = Initial::first_sample;
+    const auto started = describe({comb}, *sample_format("q15"), *sample_format("q15"), 1.0);
+    CHECK(started.described->missing->error.problem == "a start other than zeros has no twin");
+    CHECK(make_twin(*started.described) == nullptr);
     const auto cic =
         promised_stage("cic-decimator", {number("order", 2), number("factor", 4)}, {word("number", "float32")});
     const auto result = describe({cic}, *sample_format("f32"), *sample_format("f32"), 1.0);
