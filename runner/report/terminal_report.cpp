@@ -134,6 +134,7 @@ std::string board_lines(const RunResult& run, const TextStyle& style) {
 Signal signal_of(const RunResult& run, const CaseResult& result) {
     Signal signal = run.signal;
     if (result.rate_hz) signal.rate_hz = *result.rate_hz;
+    signal.rate_hz *= result.returned_per_sent;  // indices are those of the response
     return signal;
 }
 

@@ -86,6 +86,7 @@ struct CaseResult {
     std::vector<AttemptResult> attempts;  ///< the invalid ones before this
     std::string rerun;                    ///< the command that repeats this case alone
     std::optional<double> rate_hz;        ///< of the case, where it is not the signal's
+    double returned_per_sent = 1.0;       ///< rate of the response over that of the stimulus
 };
 
 struct Counts {

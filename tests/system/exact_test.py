@@ -7,7 +7,7 @@ from support import FIRMWARE, NOISE, ROOT, VIRTUAL_BOARD, Case, halflsb, main
 
 PLANS = sorted(path for path in (ROOT / "rigs" / "cw-7" / "exact").glob("*.toml") if path.stem != "cases")
 BY_NAME = {path.stem: path for path in PLANS}
-IMAGES = ("halflsb-cw7.elf", "halflsb-cw7-wide.elf", "halflsb-cw7-exact.elf")
+IMAGES = ("halflsb-cw7.elf", "halflsb-cw7-wide.elf", "halflsb-cw7-exact.elf", "halflsb-cw7-rates.elf")
 
 
 def offered(*options):
@@ -23,14 +23,14 @@ class Exact(Case):
 
     def test_each_filter_of_the_virtual_board_equals_its_twin(self):
         seen = set()
-        for choice in ("all", "decisions"):
+        for choice in ("all", "decisions", "rates"):
             names = [name for name in offered("--filter-set", choice) if name in BY_NAME]
             seen.update(names)
             with self.virtual_board("--filter-set", ",".join(names)):
                 for name in names:
                     with self.subTest(name):
                         self.assert_status(self.run_plan(name), 0)
-        self.assertGreaterEqual(len(seen), 30)
+        self.assertGreaterEqual(len(seen), 35)
 
     def test_each_filter_of_the_emulated_firmware_equals_its_twin(self):
         seen = set()
@@ -45,11 +45,11 @@ class Exact(Case):
                     with self.subTest(name, image=image):
                         self.assert_status(done, 0)
                         seen.add(name)
-        self.assertGreaterEqual(len(seen), 25)
+        self.assertGreaterEqual(len(seen), 30)
 
     def test_limits_that_follow_from_the_arithmetic_pass_on_every_right_board(self):
         """The same plans with error rules in the place of exact: a bound that a right board exceeds would be no bound."""
-        for choice in ("all", "decisions"):
+        for choice in ("all", "decisions", "rates"):
             names = [name for name in offered("--filter-set", choice) if name in BY_NAME]
             with self.virtual_board("--filter-set", ",".join(names)):
                 for name in names:
@@ -68,7 +68,7 @@ name = "impulse"
 shape = "impulse"
 at_samples = 3
 level_ratio = 0.4
-length_samples = 600
+length_samples = 608
 """)
                     for file in (ROOT / "rigs").glob("**/*.txt"):
                         target = self.folder / file.relative_to(ROOT / "rigs")
@@ -85,6 +85,23 @@ length_samples = 600
             done = self.run_plan("settle", plan=plan)
         self.assert_status(done, 1)
         self.assertIn("samples differ from the declared arithmetic, by up to", done.out)
+
+    def test_an_output_taken_at_another_input_of_the_group_is_refused(self):
+        """Blocks that are no multiple of the factor tell it by their counts, else every sample differs."""
+        text = BY_NAME["belt-eighth"].read_text().replace("phase_samples = 7", "phase_samples = 6")
+        plan = self.write("plan.toml", text)
+        for file in ("cw-7/exact/cases.toml",):
+            target = self.folder / file
+            target.parent.mkdir(parents=True, exist_ok=True)
+            target.write_bytes((ROOT / "rigs" / file).read_bytes())
+        with self.virtual_board("--filter-set", "rates"):
+            done = self.run_plan("belt-eighth", "--case", "ramp", plan=plan, root=self.folder)
+            self.assert_status(done, 1)
+            self.assertIn("750 of 750 samples differ from the declared arithmetic", done.out)
+        with self.virtual_board("--filter-set", "rates", "--block", "7"):
+            done = self.run_plan("belt-eighth", "--case", "ramp", plan=plan, root=self.folder)
+            self.assert_status(done, 3)
+            self.assertIn("phase_samples", done.out)
 
 
 if __name__ == "__main__":
