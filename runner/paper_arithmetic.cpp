@@ -46,9 +46,10 @@ FilterChain with_rounding(FilterChain chain) {
 }
 
 std::string why(const ErrorBound& bound, const BoundUse& use) {
-    if (!use.noise_like) return "worst case: the stimulus is no white noise";
-    if (bound.is_statistical) return "statistics of noise";
-    return "worst case in part: where noise stands less than 6 bits above what is dropped";
+    const std::string past = use.has_past ? ", and the case before" : "";
+    if (!use.noise_like) return "worst case: the stimulus is no white noise" + past;
+    if (bound.is_statistical) return "statistics of noise" + past;
+    return "worst case in part: where noise stands less than 6 bits above what is dropped" + past;
 }
 
 PredictedError error_of(const ErrorBound& bound, const BoundUse& use, double worth) {
@@ -70,31 +71,18 @@ int channel_of(const Plan& plan, const Case& the_case, int channel) {
     return the_case.channel && !channels_differ(plan.filter) ? *the_case.channel : channel;
 }
 
-std::vector<PredictedCaseError> case_errors(const Plan& plan, const DescribedChain& described, int channel,
-                                            const std::vector<std::size_t>& selected, const PredictedError& general,
-                                            double worth, const std::function<bool()>& go_on) {
-    struct Known {
-        BoundUse use;
-        PredictedError error;
-    };
-    std::vector<Known> known;
+std::vector<PredictedCaseError> case_errors(const Plan& plan, int channel, const std::vector<std::size_t>& selected,
+                                            const PredictedError& general, double worth,
+                                            const std::function<bool()>& go_on) {
     std::vector<PredictedCaseError> told;
     for (const std::size_t index : selected) {
         if (!go_on()) break;
         const Case& the_case = plan.cases[index];
-        const BoundUse use = bound_use(plan, the_case, channel_of(plan, the_case, channel));
-        PredictedError error;
-        const auto same = std::find_if(known.begin(), known.end(), [&](const Known& k) {
-            return k.use.samples == use.samples && k.use.noise_like == use.noise_like &&
-                   k.use.input_rms == use.input_rms;
-        });
-        if (same != known.end() && !the_case.filter) {
-            error = same->error;
-        } else {
-            const auto own = the_case.filter ? described_channel(plan, the_case, channel) : std::nullopt;
-            error = error_of(derive(own ? *own : described, use), use, worth);
-            if (!the_case.filter) known.push_back({use, error});
-        }
+        const int driven = channel_of(plan, the_case, channel);
+        const auto bound = judged_bound(plan, the_case, driven);
+        if (!bound) continue;
+        const BoundUse use = bound_use(plan, the_case, driven);
+        PredictedError error = error_of(*bound, use, worth);
         PredictedError as_general = error;
         as_general.why = general.why;
         if (as_general == general) continue;
@@ -158,7 +146,7 @@ PredictedArithmetic predict_arithmetic(const Plan& plan, const DescribedChain& d
             describe(chain, plan.signal.input, plan.signal.output, plan.signal.output_per_input).described;
         if (said) told.largest_if_rounding_said = derive(*said, use).largest() / worth;
     }
-    told.cases = case_errors(plan, described, channel, selected, told.error, worth, go_on);
+    told.cases = case_errors(plan, channel, selected, told.error, worth, go_on);
     if (!go_on()) return told;
     told.nodes = predict_nodes(described);
     told.coefficients = predict_coefficients(described);

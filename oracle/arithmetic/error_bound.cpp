@@ -2,6 +2,7 @@
 
 #include <algorithm>
 #include <cmath>
+#include <limits>
 
 #include "oracle/arithmetic/float_points.hpp"
 #include "oracle/arithmetic/path_sums.hpp"
@@ -13,6 +14,7 @@ namespace halflsb {
 namespace {
 
 constexpr double bits_above = 64.0;    // 6 bits: the noise must spread over that many of the steps kept
+constexpr double one_sign = 1e-9;      // of sum |h|: a path with less of the other sign has but one
 constexpr std::size_t most_lags = 64;  // of products whose errors go together; beyond them |r[l]| <= r[0]
 
 /// Sum over k, l < count of |r[k - l]|: the power of `count` errors that go together, one sample apart each.
@@ -28,13 +30,30 @@ double power_of_row(const std::vector<double>& autocorrelation, int count) {
 
 double product(double factor, double amount) { return factor == 0.0 || amount == 0.0 ? 0.0 : factor * amount; }
 
+/// A point with what does not hang on the stimulus.
+struct KnownPoint {
+    RoundingPoint point;
+    PathSums sums;
+    /// Of the number that is shortened, for white noise of rms 1 at the input; looked up once it is asked for.
+    std::optional<double> level_per_rms;
+
+    double level(double input_rms) {
+        if (!level_per_rms) {
+            const bool is_known = is_linear(point.from_input) && !changes_rate(point.from_input);
+            level_per_rms = is_known ? std::sqrt(noise_power_gain(point.from_input)) * point.factor : 0.0;
+        }
+        return input_rms * *level_per_rms;
+    }
+};
+
 /// What the points add up to, by kind.
 class Budget {
 public:
     Budget(const BoundUse& use, ErrorBound& bound) : use_(use), bound_(bound) {}
 
-    void add(const RoundingPoint& point, const FilterChain& path) {
-        const PathSums sums = path_sums(path, use_.samples, std::min(most_lags, static_cast<std::size_t>(point.count)));
+    void add(KnownPoint& known) {
+        const RoundingPoint& point = known.point;
+        const PathSums& sums = known.sums;
         BoundTerm term = term_of(point, sums);
         bound_.lower += term.lower;
         bound_.upper += term.upper;
@@ -42,7 +61,10 @@ public:
         bound_.worst_bias_upper += term.bias_upper;
         const double any = product(point.error.largest(), sums.l1());
         bound_.worst_rms += any;
-        term.is_statistical = use_.noise_like && sums.is_one_response && is_far_above(point);
+        const bool has_both_signs = std::min(sums.positive, -sums.negative) > one_sign * sums.l1();
+        clips_one_way_ = clips_one_way_ && !has_both_signs;
+        term.is_statistical =
+            use_.noise_like && sums.is_one_response && known.level(use_.input_rms) >= bits_above * point.step;
         if (term.is_statistical) {
             add_noise(point, sums, term);
         } else {
@@ -67,8 +89,11 @@ public:
         const double rms = any_rms_ + std::sqrt(constant_rms_ * constant_rms_ + cross + noise) + reference_error;
         bound_.rms = std::min(rms, bound_.largest());
         bound_.worst_rms = std::min(bound_.worst_rms + reference_error, bound_.largest());
-        bound_.worst_bias_lower -= reference_error;
-        bound_.worst_bias_upper += reference_error;
+        // No mean is beyond the largest errors.
+        bound_.worst_bias_lower = std::max(bound_.worst_bias_lower - reference_error, bound_.lower);
+        bound_.worst_bias_upper = std::min(bound_.worst_bias_upper + reference_error, bound_.upper);
+        bound_.clipped_bias_lower = clips_one_way_ ? bound_.worst_bias_lower : bound_.lower;
+        bound_.clipped_bias_upper = clips_one_way_ ? bound_.worst_bias_upper : bound_.upper;
         const double spread = std::sqrt(2.0 * t * bias_variance_ / count) + reference_error;
         bound_.bias_lower = std::max(bias_lower_ - spread, bound_.worst_bias_lower);
         bound_.bias_upper = std::min(bias_upper_ + spread, bound_.worst_bias_upper);
@@ -85,6 +110,10 @@ private:
         term.noise_gain = sums.squares;
         term.dc_gain = sums.dc;
         const RoundingError& e = point.error;
+        if (!point.is_float) {
+            term.lowest = e.lowest / point.step;
+            term.highest = e.highest / point.step;
+        }
         if (!sums.is_one_response) {
             term.upper = product(e.largest(), sums.l1());
             term.lower = -term.upper;
@@ -95,17 +124,13 @@ private:
         }
         term.lower = product(e.lowest, sums.positive) + product(e.highest, sums.negative);
         term.upper = product(e.highest, sums.positive) + product(e.lowest, sums.negative);
-        term.bias_lower = product(e.lowest, sums.step_positive) + product(e.highest, sums.step_negative);
-        term.bias_upper = product(e.highest, sums.step_positive) + product(e.lowest, sums.step_negative);
+        const double positive = sums.step_positive + sums.past_positive,
+                     negative = sums.step_negative + sums.past_negative;
+        term.bias_lower = product(e.lowest, positive) + product(e.highest, negative);
+        term.bias_upper = product(e.highest, positive) + product(e.lowest, negative);
         term.formula = point.is_float ? "u x largest number (Higham, chapter 3) x sum |h|"
                                       : "error x sum of h above and below 0 (Jackson 1970)";
         return term;
-    }
-
-    bool is_far_above(const RoundingPoint& point) const {
-        if (!is_linear(point.from_input) || changes_rate(point.from_input)) return false;
-        const double level = use_.input_rms * std::sqrt(noise_power_gain(point.from_input)) * point.factor;
-        return level >= bits_above * point.step;
     }
 
     void add_noise(const RoundingPoint& point, const PathSums& sums, BoundTerm& term) {
@@ -121,6 +146,8 @@ private:
         } else {
             constant_rms_ += mean * std::sqrt(sums.step_squares);
         }
+        // Of the past nobody knows what came in: it has its worst case.
+        any_rms_ += product(e.largest(), sums.past_rms);
         term.bias_lower = e.mean_lowest * sums.step_positive + e.mean_highest * sums.step_negative;
         term.bias_upper = e.mean_highest * sums.step_positive + e.mean_lowest * sums.step_negative;
         if (!e.mean_varies) {
@@ -129,11 +156,14 @@ private:
             term.bias_lower = std::min(e.mean_lowest * mean_step, e.mean_highest * mean_step);
             term.bias_upper = std::max(e.mean_lowest * mean_step, e.mean_highest * mean_step);
         }
+        term.bias_lower += product(e.lowest, sums.past_positive) + product(e.highest, sums.past_negative);
+        term.bias_upper += product(e.highest, sums.past_positive) + product(e.lowest, sums.past_negative);
     }
 
     const BoundUse& use_;
     ErrorBound& bound_;
     bool all_statistical_ = true;
+    bool clips_one_way_ = true;
     double any_rms_ = 0.0;       ///< of errors that may go with anything
     double constant_rms_ = 0.0;  ///< of constant means
     double variance_ = 0.0, peak_amplitude_ = 0.0, bias_variance_ = 0.0;
@@ -142,23 +172,72 @@ private:
 
 }  // namespace
 
-ErrorBound derive(const DescribedChain& chain, const BoundUse& use) {
-    const ExactChain exact = exact_chain(chain);
-    ErrorBound bound;
-    bound.step = step_of(chain.stages.back().out.word);
-    Budget budget(use, bound);
-    const Port& in = chain.stages.front().in;
-    const double largest_input = use.largest_input > 0.0 ? use.largest_input : largest_value(in);
-    for (const RoundingPoint& point : rounding_points(chain, exact)) {
-        budget.add(point, path_of(point, exact.stages));
-        bound.terms.back().lowest = point.error.lowest / point.step;
-        bound.terms.back().highest = point.error.highest / point.step;
+class BoundDeriver::Paths {
+public:
+    explicit Paths(DescribedChain chain)
+        : chain_(std::move(chain)), exact_(exact_chain(chain_)), points_(rounding_points(chain_, exact_)) {}
+
+    const DescribedChain& chain() const { return chain_; }
+
+    ErrorBound derive(const BoundUse& use) {
+        const double largest_input =
+            use.largest_input > 0.0 ? use.largest_input : largest_value(chain_.stages.front().in);
+        ErrorBound bound;
+        bound.step = step_of(chain_.stages.back().out.word);
+        Budget budget(use, bound);
+        Known& known = known_for(use.samples, use.has_past, largest_input);
+        for (KnownPoint& point : known.points) budget.add(point);
+        budget.finish(known.reference_error);
+        return bound;
     }
-    for (const RoundingPoint& point : float_points(chain, exact, {use.samples, largest_input})) {
-        budget.add(point, path_of(point, exact.stages));
+
+private:
+    struct Known {
+        std::int64_t samples;
+        bool has_past;
+        double largest_input, reference_error;
+        std::vector<KnownPoint> points;
+    };
+
+    Known& known_for(std::int64_t samples, bool has_past, double largest_input) {
+        for (Known& known : known_) {
+            if (known.samples == samples && known.has_past == has_past && known.largest_input == largest_input)
+                return known;
+        }
+        // Plans with more lengths than that pay for each again.
+        if (known_.size() >= most_known) known_.clear();
+        Known known{samples, has_past, largest_input, reference_error(chain_, exact_, largest_input), {}};
+        const auto add = [&](const RoundingPoint& point) {
+            const auto lags = std::min(most_lags, static_cast<std::size_t>(point.count));
+            known.points.push_back({point, path_sums(path_of(point, exact_.stages), samples, lags, has_past), {}});
+        };
+        for (const RoundingPoint& point : points_) add(point);
+        // What ran before the record, nobody knows for how long, adds to what a running sum has lost.
+        constexpr std::int64_t for_ever = std::numeric_limits<std::int64_t>::max();
+        for (const RoundingPoint& point :
+             float_points(chain_, exact_, {has_past ? for_ever : samples, largest_input})) {
+            add(point);
+        }
+        known_.push_back(std::move(known));
+        return known_.back();
     }
-    budget.finish(reference_error(chain, exact, largest_input));
-    return bound;
-}
+
+    static constexpr std::size_t most_known = 64;
+
+    DescribedChain chain_;
+    ExactChain exact_;
+    std::vector<RoundingPoint> points_;
+    std::vector<Known> known_;
+};
+
+BoundDeriver::BoundDeriver(DescribedChain chain) : paths_(std::make_unique<Paths>(std::move(chain))) {}
+BoundDeriver::~BoundDeriver() = default;
+BoundDeriver::BoundDeriver(BoundDeriver&&) noexcept = default;
+BoundDeriver& BoundDeriver::operator=(BoundDeriver&&) noexcept = default;
+
+const DescribedChain& BoundDeriver::chain() const { return paths_->chain(); }
+ErrorBound BoundDeriver::derive(const BoundUse& use) { return paths_->derive(use); }
+
+ErrorBound derive(const DescribedChain& chain, const BoundUse& use) { return BoundDeriver(chain).derive(use); }
 
 }  // namespace halflsb

@@ -9,6 +9,7 @@
 #pragma once
 
 #include <cstdint>
+#include <memory>
 #include <optional>
 #include <string>
 #include <vector>
@@ -18,8 +19,10 @@
 namespace halflsb {
 
 struct BoundUse {
-    std::int64_t samples = 4096;  ///< that are judged, from the start on, states being zero before
-    bool noise_like = false;      ///< the stimulus is white noise of input_rms (a value)
+    std::int64_t samples = 4096;  ///< that are judged
+    /// Samples came before them: what these left of errors is in rms and bias. Else all states are zero before.
+    bool has_past = false;
+    bool noise_like = false;  ///< the stimulus is white noise of input_rms (a value)
     double input_rms = 0.0;
     double largest_input = 0.0;  ///< |value| that the stimulus reaches, for float32; 0: full scale, 1.0 of f32
     double alpha = 1e-6;         ///< that rms or bias is exceeded all the same
@@ -47,6 +50,9 @@ struct ErrorBound {
     double bias_lower = 0.0, bias_upper = 0.0;
     /// Whatever the stimulus is: what rms and bias are without noise.
     double worst_rms = 0.0, worst_bias_lower = 0.0, worst_bias_upper = 0.0;
+    /// Of the bias where something may have been clipped on the way: where a path has both signs, clipping can keep the
+    /// errors of one of them, and no mean is then smaller than the largest error.
+    double clipped_bias_lower = 0.0, clipped_bias_upper = 0.0;
     /// rms and bias count on noise for every point; false: for some, or all, the worst case stands in them.
     bool is_statistical = false;
     double reference_error = 0.0;  ///< of double precision itself; in lower, upper, rms and bias
@@ -54,9 +60,24 @@ struct ErrorBound {
 
     double largest() const { return upper > -lower ? upper : -lower; }
     double bias() const { return bias_upper > -bias_lower ? bias_upper : -bias_lower; }
-    double worst_bias() const { return worst_bias_upper > -worst_bias_lower ? worst_bias_upper : -worst_bias_lower; }
 };
 
 ErrorBound derive(const DescribedChain& chain, const BoundUse& use = {});
+
+/// The same of one chain for many uses: what costs, the sums over the paths, is kept for each number of samples.
+class BoundDeriver {
+public:
+    explicit BoundDeriver(DescribedChain chain);
+    ~BoundDeriver();
+    BoundDeriver(BoundDeriver&&) noexcept;
+    BoundDeriver& operator=(BoundDeriver&&) noexcept;
+
+    const DescribedChain& chain() const;
+    ErrorBound derive(const BoundUse& use);
+
+private:
+    class Paths;
+    std::unique_ptr<Paths> paths_;
+};
 
 }  // namespace halflsb

@@ -19,6 +19,11 @@ struct PathSums {
     /// Means over the first `samples` of s where it is positive, where it is negative, and of s^2.
     double step_positive = 0.0, step_negative = 0.0, step_squares = 0.0;
 
+    /// Of errors made before the first of the `samples`, however long ago: sums of what each puts into their mean,
+    /// (s[n + samples] - s[n]) / samples, above 0 and below it; and the rms over the samples of what errors within
+    /// -1 .. 1 can put into them. 0 when not asked for.
+    double past_positive = 0.0, past_negative = 0.0, past_rms = 0.0;
+
     /// False around a median and where the rate changes: then positive and -negative are the largest output, of either
     /// sign, for inputs within -1 .. 1, and the others no smaller than what they stand for.
     bool is_one_response = true;
@@ -27,7 +32,7 @@ struct PathSums {
 };
 
 /// Runs the path until its rest is proven to be below 1e-12 of sum |h| (impulse_run.hpp), at most 2^22 samples; `lags`
-/// of the autocorrelation, at least 1. samples > 0.
-PathSums path_sums(const FilterChain& path, std::int64_t samples, std::size_t lags);
+/// of the autocorrelation, at least 1. samples > 0. With `has_past` the sums of the past, too: that keeps h.
+PathSums path_sums(const FilterChain& path, std::int64_t samples, std::size_t lags, bool has_past = false);
 
 }  // namespace halflsb

@@ -8,6 +8,7 @@
 #include "oracle/filters/impulse_sums.hpp"
 #include "oracle/filters/multirate_norms.hpp"
 #include "oracle/filters/rates.hpp"
+#include "oracle/filters/spaced_chain.hpp"
 
 namespace halflsb {
 
@@ -55,7 +56,7 @@ std::optional<std::int64_t> flush_of_steady_rate(const FilterChain& chain, doubl
 double l1_of_steady_rate(const FilterChain& chain, double tail) {
     const auto of_piece = [](std::span<const double> piece) { return std::array<double, 1>{sum_of_sizes(piece)}; };
     const auto is_done = [tail](const std::array<double, 1>& sum, double rest) { return rest <= tail * sum[0]; };
-    return sums_over_impulse<1>(chain, 1.0, of_piece, is_done)[0];
+    return sums_over_impulse<1>(without_spacing(chain).chain, 1.0, of_piece, is_done)[0];
 }
 
 /// A chain with a median in it: what stands before the first one, and what behind.

@@ -146,9 +146,9 @@ void check_derived(const Plan& plan, const Case& the_case, const Rule& rule, std
         const auto limits = derived_limits(plan, the_case, channel);
         if (!limits) return;
         double wanted = 0.0;
-        if (asked.largest && asked.largest->is_derived) wanted = limits->largest;
+        if (asked.largest && asked.largest->is_derived) wanted = limits->error.largest();
         if (asked.rms && asked.rms->is_derived) wanted = std::max(wanted, limits->worst_rms);
-        if (asked.bias && asked.bias->is_derived) wanted = std::max(wanted, limits->worst_bias);
+        if (asked.bias && asked.bias->is_derived) wanted = std::max(wanted, limits->worst_bias.largest());
         if (wanted <= widest) continue;
         const Limit::In in = natural_unit(plan.signal);
         const std::string size = std::isfinite(wanted) ? "is " + brief(wanted / worth_of(in, plan.signal)) + " " +

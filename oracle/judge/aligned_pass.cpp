@@ -1,6 +1,7 @@
 #include "oracle/judge/aligned_pass.hpp"
 
 #include <algorithm>
+#include <cmath>
 
 #include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/response_verdict.hpp"
@@ -15,6 +16,31 @@ JudgedFigure at_most(std::string name, double value, double limit, std::string u
     figure.passed = *figure.value <= *figure.limit;
     figure.margin = judged(*figure.limit - *figure.value);
     return figure;
+}
+
+/// Errors against what each sign may come to: told is the one with the least room, and its end as the limit.
+JudgedFigure within(std::string name, const ErrorEnds& found, const ErrorEnds& limits, std::string unit) {
+    // + 0.0: no figure is -0.
+    const double lowest = judged(found.lowest) + 0.0, highest = judged(found.highest) + 0.0;
+    const double lower = judged(limits.lowest) + 0.0, upper = judged(limits.highest) + 0.0;
+    const bool is_low = lowest - lower < upper - highest;
+    JudgedFigure figure{std::move(name),
+                        is_low ? lowest : highest,
+                        is_low ? lower : upper,
+                        std::nullopt,
+                        std::move(unit),
+                        is_low,
+                        false,
+                        {}};
+    figure.passed = lowest >= lower && highest <= upper;
+    figure.margin = judged(is_low ? lowest - lower : upper - highest);
+    figure.note = "derived, " + brief(lower) + " .. " + brief(upper);
+    return figure;
+}
+
+bool is_wider_once_clipped(const DerivedLimits& derived) {
+    return derived.worst_rms != derived.rms || derived.worst_bias.lowest != derived.bias.lowest ||
+           derived.worst_bias.highest != derived.bias.highest;
 }
 
 /// Where derived limits say nothing, and which word stands in their way.
@@ -41,8 +67,13 @@ AlignedPass::AlignedPass(const Plan& plan, const Case& the_case, int channel, in
     if (first_judged_ > 0 && lag_samples > 0) first_judged_ += lag_samples;
     for (const Rule& rule : the_case.rules) {
         if (const auto* error = std::get_if<ErrorRule>(&rule.kind); error != nullptr && says_something(*error)) {
-            std::optional<double> limit;
-            if (error->largest) limit = value_of(*error->largest, plan.signal, derived_.largest);
+            std::optional<ErrorEnds> limit;
+            if (error->largest && error->largest->is_derived) {
+                limit = derived_.error;
+            } else if (error->largest) {
+                const double largest = value_of(*error->largest, plan.signal);
+                limit = ErrorEnds{-largest, largest};
+            }
             error_rules_.push_back({&rule, ErrorMeasure(limit), FirstBadWatch(plan.signal.output), is_derived(*error)});
             error_rules_.back().measure.start_at(first_judged_);
         }
@@ -138,15 +169,31 @@ RuleVerdict AlignedPass::error_verdict(const ErrorRuleState& state, const RailWa
                                        {}});
         }
     };
-    told(rule.largest, "max", figures.largest, derived_.largest);
+    const auto told_within = [&](const Limit& limit, std::string name, ErrorEnds found, const ErrorEnds& derived) {
+        const double worth = worth_of(limit.in, plan_.signal);
+        verdict.figures.push_back(within(std::move(name), {found.lowest / worth, found.highest / worth},
+                                         {derived.lowest / worth, derived.highest / worth},
+                                         unit_name(limit.in, plan_.signal)));
+    };
+    if (rule.largest && rule.largest->is_derived) {
+        const bool is_number = !std::isnan(figures.largest);
+        told_within(
+            *rule.largest, "max",
+            is_number ? ErrorEnds{figures.lowest, figures.highest} : ErrorEnds{figures.largest, figures.largest},
+            derived_.error);
+    } else {
+        told(rule.largest, "max", figures.largest, 0.0);
+    }
     told(rule.rms, "rms", figures.rms, clip ? derived_.worst_rms : derived_.rms);
-    // The limit of the bias is that of the whole record: the mean over a part of it may be as large as any sample.
-    const double derived_bias = clip ? derived_.worst_bias : derived_.bias;
-    told(rule.bias, "bias", rule.bias ? std::abs(figures.bias) : figures.bias,
-         state.exempt > 0 ? derived_.largest : derived_bias);
-    // The limit holds for the magnitude; which way the firmware leans is the first thing its author asks.
-    if (rule.bias && figures.bias < 0.0)
-        verdict.figures.back().note = rule.bias->is_derived ? "negative, derived" : "negative";
+    if (rule.bias && rule.bias->is_derived) {
+        // The limit of the bias is that of the whole record: the mean over a part of it may be as large as any sample.
+        const ErrorEnds& ends = state.exempt > 0 ? derived_.error : clip ? derived_.worst_bias : derived_.bias;
+        told_within(*rule.bias, "bias", {figures.bias, figures.bias}, ends);
+    } else {
+        told(rule.bias, "bias", rule.bias ? std::abs(figures.bias) : figures.bias, 0.0);
+        // The limit holds for the magnitude; which way the firmware leans is the first thing its author asks.
+        if (rule.bias && figures.bias < 0.0) verdict.figures.back().note = "negative";
+    }
     if (is_driven_ && (rule.min_snr_db || figures.snr_db)) {
         JudgedFigure snr{"snr", std::nullopt, std::nullopt, std::nullopt, "dB", true, true, {}};
         if (figures.snr_db) snr.value = judged(*figures.snr_db);
@@ -178,7 +225,7 @@ RuleVerdict AlignedPass::error_verdict(const ErrorRuleState& state, const RailWa
     }
     if (state.exempt > 0) {
         verdict.reason += (verdict.reason.empty() ? "" : "; ") + exempt_text(state.exempt, rails);
-    } else if (state.is_derived && clip && derived_.worst_rms != derived_.rms) {
+    } else if (state.is_derived && clip && is_wider_once_clipped(derived_)) {
         verdict.reason += (verdict.reason.empty() ? "" : "; ") +
                           ("from sample " + std::to_string(*clip) +
                            " on a rail may be reached: derived rms and bias are those of the worst case");

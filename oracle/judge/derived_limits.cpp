@@ -1,56 +1,34 @@
 #include "oracle/judge/derived_limits.hpp"
 
 #include <algorithm>
-#include <cmath>
-#include <vector>
 
-#include "oracle/judge/case_rates.hpp"
-#include "oracle/judge/leftover.hpp"
+#include "oracle/judge/limit_store.hpp"
 #include "oracle/judge/units.hpp"
 
 namespace halflsb {
-namespace {
-
-constexpr std::int64_t rms_samples = 65536;
-
-/// Only what is drawn independently from sample to sample is white.
-bool is_white_noise(const Case& the_case) { return the_case.shape == "noise" && !the_case.stimulus_values.has("add"); }
-
-double rms_of_input(const Plan& plan, const Case& the_case) {
-    const auto count = static_cast<std::size_t>(std::min(the_case.stimulus->length_samples(), rms_samples));
-    std::vector<Code> codes(count);
-    std::vector<double> values(count);
-    fill_codes(*the_case.stimulus, plan.signal.input, plan.signal.quantise, 0, codes);
-    values_of(plan.signal.input, codes, values);
-    double sum = 0.0;
-    for (const double value : values) sum += value * value;
-    return std::sqrt(sum / static_cast<double>(count));
-}
-
-}  // namespace
 
 BoundUse bound_use(const Plan& plan, const Case& the_case, int channel) {
-    BoundUse use;
-    use.samples = std::max<std::int64_t>(judged_samples(plan, the_case), 1);
-    use.noise_like = is_driven(the_case, channel) && is_white_noise(the_case);
-    if (use.noise_like) use.input_rms = rms_of_input(plan, the_case);
-    return use;
+    return plan.limits->bound_use(plan, the_case, channel);
 }
 
 std::optional<DescribedChain> described_channel(const Plan& plan, const Case& the_case, int channel) {
-    const Signal& signal = plan.signal;
-    return describe(chain_of(plan, the_case, channel), signal.input, signal.output, signal.output_per_input).described;
+    return plan.limits->described(plan, the_case, channel);
+}
+
+std::optional<ErrorBound> judged_bound(const Plan& plan, const Case& the_case, int channel) {
+    return plan.limits->judged_bound(plan, the_case, channel);
 }
 
 std::optional<DerivedLimits> derived_limits(const Plan& plan, const Case& the_case, int channel) {
-    const auto chain = described_channel(plan, the_case, channel);
-    if (!chain) return std::nullopt;
-    const double gain = std::fabs(plan.signal.output_per_input);
-    const ErrorBound bound = derive(*chain, bound_use(plan, the_case, channel));
-    const Leftover left = leftover(*chain, plan, the_case);
-    return DerivedLimits{gain * (bound.largest() + left.largest), gain * (bound.rms + left.rms),
-                         gain * (bound.bias() + left.bias), gain * (bound.worst_rms + left.rms),
-                         gain * (bound.worst_bias() + left.bias)};
+    const auto bound = judged_bound(plan, the_case, channel);
+    if (!bound) return std::nullopt;
+    const double gain = plan.signal.output_per_input, size = gain < 0.0 ? -gain : gain;
+    const auto ends = [gain](double lower, double upper) {
+        return gain < 0.0 ? ErrorEnds{gain * upper, gain * lower} : ErrorEnds{gain * lower, gain * upper};
+    };
+    return DerivedLimits{ends(bound->lower, bound->upper), size * bound->rms,
+                         ends(bound->bias_lower, bound->bias_upper), size * bound->worst_rms,
+                         ends(bound->clipped_bias_lower, bound->clipped_bias_upper)};
 }
 
 bool is_derived(const ErrorRule& rule) {

@@ -17,7 +17,7 @@ std::optional<double> allowed_rms(const Case& the_case, const Signal& signal, co
             smallest = smallest ? std::min(*smallest, value) : value;
         };
         take(error->rms, derived.rms);
-        take(error->largest, derived.largest);
+        take(error->largest, derived.error.largest());
     }
     return smallest;
 }

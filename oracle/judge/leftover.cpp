@@ -84,6 +84,11 @@ std::optional<std::int64_t> samples_to_forget(const DescribedChain& chain) {
     return all;
 }
 
+LeftoverUse leftover_use(const Plan& plan, const Case& the_case) {
+    if (the_case.start == Start::reset) return {};
+    return {the_case.start, the_case.start_samples, judged_samples(plan, the_case)};
+}
+
 Leftover leftover(const DescribedChain& chain, const Plan& plan, const Case& the_case) {
     if (the_case.start == Start::reset) return {};
     const auto forgotten = samples_to_forget(chain);

@@ -15,6 +15,14 @@ struct Leftover {
     double rms = 0.0, bias = 0.0;  ///< over the judged samples: the first ones have the most
 };
 
+/// All that it hangs on beside the chain and the signal.
+struct LeftoverUse {
+    Start start = Start::reset;
+    std::int64_t start_samples = 0, judged_samples = 0;
+    bool operator==(const LeftoverUse&) const = default;
+};
+LeftoverUse leftover_use(const Plan& plan, const Case& the_case);
+
 /// Nothing after a reset. Else after the case's start_samples zeros, or as many discarded samples. Infinite where no
 /// rest of the impulse response is known. Saturation in the case before is not looked at.
 Leftover leftover(const DescribedChain& chain, const Plan& plan, const Case& the_case);

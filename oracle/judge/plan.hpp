@@ -73,6 +73,10 @@ struct PlanPart {
     std::string bytes;  ///< as they were
 };
 
+class LimitStore;
+/// limit_store.hpp
+std::shared_ptr<LimitStore> make_limit_store();
+
 struct Plan {
     std::string title;
     std::string file;
@@ -81,6 +85,8 @@ struct Plan {
     std::vector<Case> cases;
     bool filter_is_unknown = false;    ///< kind = "unknown": there is no reference
     std::vector<PlanPart> parts = {};  ///< the plan first, then in the order of reading, each path once
+    /// What limits were derived so far, shared by copies; never empty.
+    std::shared_ptr<LimitStore> limits = make_limit_store();
 };
 
 double rate_hz_of(const Plan& plan, const Case& the_case);

@@ -4,17 +4,21 @@
 
 namespace halflsb {
 
-ErrorMeasure::ErrorMeasure(std::optional<double> limit) : limit_(limit) {}
+ErrorMeasure::ErrorMeasure(std::optional<ErrorEnds> limit) : limit_(limit) {}
 
 void ErrorMeasure::start_at(std::int64_t first_index) { next_index_ = first_index; }
 
 void ErrorMeasure::add(std::span<const double> reference, std::span<const double> response) {
     // Work on locals: the compiler cannot keep members in registers across the loads.
     CompensatedSum sum = sum_, squares = sum_squares_, reference_squares = reference_squares_;
-    double largest = figures_.largest;
+    double largest = figures_.largest, lowest = figures_.lowest, highest = figures_.highest;
     std::int64_t largest_index = figures_.largest_index;
     const bool limited = limit_.has_value();
-    const double limit = limit_.value_or(0.0);
+    const ErrorEnds limit = limit_.value_or(ErrorEnds{});
+    if (largest_index < 0 && !reference.empty()) {
+        lowest = HUGE_VAL;
+        highest = -HUGE_VAL;
+    }
     for (std::size_t i = 0; i < reference.size(); ++i) {
         const double e = response[i] - reference[i];
         const double size = std::fabs(e);
@@ -26,7 +30,9 @@ void ErrorMeasure::add(std::span<const double> reference, std::span<const double
             largest = size;
             largest_index = next_index_ + static_cast<std::int64_t>(i);
         }
-        if (limited && !(size <= limit)) {
+        if (e < lowest) lowest = e;
+        if (e > highest) highest = e;
+        if (limited && !(e >= limit.lowest && e <= limit.highest)) {
             if (figures_.beyond == 0) figures_.first_beyond = next_index_ + static_cast<std::int64_t>(i);
             ++figures_.beyond;
         }
@@ -35,6 +41,8 @@ void ErrorMeasure::add(std::span<const double> reference, std::span<const double
     sum_squares_ = squares;
     reference_squares_ = reference_squares;
     figures_.largest = largest;
+    figures_.lowest = lowest;
+    figures_.highest = highest;
     figures_.largest_index = largest_index;
     figures_.samples += static_cast<std::int64_t>(reference.size());
     next_index_ += static_cast<std::int64_t>(reference.size());

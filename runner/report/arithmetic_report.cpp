@@ -48,7 +48,7 @@ std::string field(const TextStyle& style, std::string_view key, const std::strin
 }
 
 std::string sums_text(const PredictedError& error, const Figures& figures, const std::string& unit) {
-    return "largest " + figures.one(error.largest()) + ", rms " + figures.one(error.rms) + ", bias " +
+    return "error " + figures.range(error.lower, error.upper) + ", rms " + figures.one(error.rms) + ", bias " +
            figures.range(error.bias_lower, error.bias_upper) + unit;
 }
 
@@ -56,7 +56,7 @@ std::string cases_text(const std::vector<PredictedCaseError>& cases, const Figur
     if (cases.empty()) return "";
     Table table{{{"case", false, 0},
                  {"samples", true, 1},
-                 {"largest", true, 0},
+                 {"error", true, 0},
                  {"rms", true, 0},
                  {"bias", true, 0},
                  {"rms and bias", false, 2}},
@@ -64,9 +64,9 @@ std::string cases_text(const std::vector<PredictedCaseError>& cases, const Figur
                 2};
     for (std::size_t i = 0; i < std::min(cases.size(), most_case_lines); ++i) {
         const PredictedCaseError& one = cases[i];
-        table.rows.push_back({printable(one.name), std::to_string(one.samples), figures.one(one.error.largest()),
-                              figures.one(one.error.rms), figures.range(one.error.bias_lower, one.error.bias_upper),
-                              one.error.why});
+        table.rows.push_back({printable(one.name), std::to_string(one.samples),
+                              figures.range(one.error.lower, one.error.upper), figures.one(one.error.rms),
+                              figures.range(one.error.bias_lower, one.error.bias_upper), one.error.why});
     }
     std::string text = laid_out(style, table);
     if (cases.size() > most_case_lines)

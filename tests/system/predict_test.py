@@ -142,29 +142,31 @@ rounding = "{rounding}"
         self.assertTrue(numpy.allclose(step, scipy_signal.lfilter(b, a, numpy.ones(len(step))), atol=1e-10))
 
     def seen_by_hand(self, declared, codes):
-        """Of every other rounding: whether the largest error exceeds the derived limit; None: no sample differs."""
+        """Of every other rounding: whether an error lies beyond its end of the derived limit; None: no sample differs."""
         b, a = (stored(v) for v in low_pass(0.02, 0.7071))
         impulse = numpy.zeros(20000)
         impulse[0] = 1.0
         loop = scipy_signal.lfilter([1.0], numpy.array(a) / 2**F, impulse)
         above, below = loop[loop > 0].sum(), -loop[loop < 0].sum()
-        half = 0.5
-        limit = {"floor": (1 - 2.0**-F) * above, "half-up": half * (above + below)}[declared]
+        lowest, highest = {"floor": (2.0**-F - 1, 0.0), "half-up": (2.0**-F - 0.5, 0.5),
+                           "toward-zero": (2.0**-F - 1, 1 - 2.0**-F)}[declared]
+        lower, upper = lowest * above - highest * below, highest * above - lowest * below
         reference = scipy_signal.lfilter(numpy.array(b) / 2**F, numpy.array(a) / 2**F, numpy.array(codes, float))
         promised, answers = twin(codes, b, a, declared), {}
         for name in ROUNDINGS:
             if name == declared:
                 continue
             response = twin(codes, b, a, name)
-            largest = abs(numpy.array(response) - reference).max()
-            self.assertGreater(abs(largest - limit), 1e-3, "too near to call by hand")
-            answers[f"{name} in place of {declared}"] = None if response == promised else bool(largest > limit)
+            error = numpy.array(response) - reference
+            beyond = max(error.max() - upper, lower - error.min())
+            self.assertGreater(abs(beyond), 1e-3, "too near to call by hand")
+            answers[f"{name} in place of {declared}"] = None if response == promised else bool(beyond > 0)
         return answers
 
     def test_what_the_derived_limits_see_is_what_a_twin_written_here_says(self):
         codes = [16384 if n >= 10 else 0 for n in range(600)]
         answers = set()
-        for declared in ("floor", "half-up"):
+        for declared in ("floor", "half-up", "toward-zero"):
             sight = self.predict(self.section_plan(declared, STEP))["sight"]
             told = {change["change"]: {"seen": True, "unseen": False, "same": None}[change["answer"]] for change in sight["changes"]}
             by_hand = self.seen_by_hand(declared, codes)

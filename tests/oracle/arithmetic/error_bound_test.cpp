@@ -250,3 +250,101 @@ TEST_CASE("error bound: without noise the worst case stands for rms and bias", "
     use.input_rms = 0.999 * level;
     CHECK_FALSE(derive(chain, use).is_statistical);
 }
+
+TEST_CASE("error bound: errors made before the judged samples are in rms and bias", "[arithmetic]") {
+    Random random(404);
+    INFO("seed 404");
+    int beyond_without = 0;
+    for (int trial = 0; trial < 150; ++trial) {
+        RandomChain chain = random_chain(random);
+        BoundUse use;
+        use.samples = random.whole(1, 40);
+        use.noise_like = true;
+        const std::int64_t top = top_of(chain.described);
+        use.input_rms =
+            std::ldexp(static_cast<double>(top), -chain.described.stages.front().in.word.fraction_bits) / 1.7321;
+        const ErrorBound from_rest = derive(chain.described, use);
+        use.has_past = true;
+        const ErrorBound bound = derive(chain.described, use);
+        std::vector<Code> words(3000);
+        for (Code& word : words) word = static_cast<Code>(random.whole(-top - 1, top));
+        const auto response = plain_response(chain.described, words);
+        const auto reference = run(exact_chain(chain.described).stages, values_of_words(chain.described, words));
+        double sum = 0.0, squares = 0.0;
+        for (std::size_t n = words.size() - static_cast<std::size_t>(use.samples); n < words.size(); ++n) {
+            sum += response[n] - reference[n];
+            squares += (response[n] - reference[n]) * (response[n] - reference[n]);
+        }
+        const auto count = static_cast<double>(use.samples);
+        const double rms = std::sqrt(squares / count), mean = sum / count;
+        INFO("trial " << trial << ": " << text_of(chain) << ", " << use.samples << " samples, rms " << rms / bound.step
+                      << " of " << bound.rms / bound.step << ", bias " << mean / bound.step << " of "
+                      << bound.bias_lower / bound.step << " .. " << bound.bias_upper / bound.step);
+        REQUIRE(rms <= bound.rms);
+        REQUIRE(mean >= bound.bias_lower);
+        REQUIRE(mean <= bound.bias_upper);
+        REQUIRE((bound.worst_bias_lower >= bound.lower && bound.worst_bias_upper <= bound.upper));
+        REQUIRE((bound.clipped_bias_lower <= bound.worst_bias_lower && bound.bias_lower <= from_rest.bias_lower));
+        beyond_without += mean < from_rest.bias_lower || mean > from_rest.bias_upper || rms > from_rest.rms;
+    }
+    // From rest the same limits would blame firmware that is right.
+    CHECK(beyond_without > 0);
+}
+
+TEST_CASE("error bound: the past of a floor in a slow loop is most of its mean", "[arithmetic]") {
+    StageArithmetic said;
+    said.rounding = Rounding::floor;
+    const DescribedChain chain = one_stage(BiquadCascade{{{0.1, 0.0, 0.0, -0.9, 0.0}}}, 14, said);
+    BoundUse use;
+    use.samples = 5;
+    // s = 1, 1.9, 2.71, 3.439, 4.0951: from rest the mean of five samples cannot be below -2.63 LSB.
+    CHECK_THAT(derive(chain, use).bias_lower / derive(chain, use).step, WithinRel(-2.62882, 1e-3));
+    use.has_past = true;
+    const ErrorBound bound = derive(chain, use);
+    // With all that came before, as low as one error.
+    CHECK_THAT(bound.bias_lower / bound.step, WithinRel(-10.0, 1e-3));
+    CHECK_THAT(bound.lower / bound.step, WithinRel(-10.0, 1e-3));
+    CHECK(bound.bias_upper <= 1e-6 * bound.step);
+}
+
+TEST_CASE("error bound: a running sum of float32 with a past has no end", "[arithmetic]") {
+    StageArithmetic said;
+    said.number = NumberKind::float32;
+    const DescribedChain chain = one_stage(MovingAverage{5}, std::nullopt, said, "moving-average", "f32", "f32");
+    BoundUse use;
+    CHECK(std::isfinite(derive(chain, use).largest()));
+    use.has_past = true;
+    CHECK(std::isinf(derive(chain, use).largest()));
+}
+
+TEST_CASE("error bound: once something may have clipped, a path of both signs has no smaller mean", "[arithmetic]") {
+    StageArithmetic said;
+    said.rounding = Rounding::half_up;
+    BoundUse use;
+    use.samples = 1000;
+    const ErrorBound one_way = derive(one_stage(BiquadCascade{{{0.1, 0.0, 0.0, -0.9, 0.0}}}, 14, said), use);
+    CHECK(one_way.clipped_bias_upper == one_way.worst_bias_upper);
+    const ErrorBound both = derive(one_stage(BiquadCascade{{{0.1, 0.0, 0.0, 0.9, 0.0}}}, 14, said), use);
+    CHECK(both.worst_bias_upper < 0.2 * both.upper);
+    CHECK((both.clipped_bias_upper == both.upper && both.clipped_bias_lower == both.lower));
+}
+
+TEST_CASE("error bound: one deriver tells each use what a fresh one would", "[arithmetic]") {
+    Random random(405);
+    INFO("seed 405");
+    for (int trial = 0; trial < 20; ++trial) {
+        const RandomChain chain = random_chain(random);
+        BoundDeriver deriver(chain.described);
+        for (int i = 0; i < 12; ++i) {
+            BoundUse use;
+            use.samples = random.whole(1, 4) * 100;
+            use.has_past = random.whole(0, 1) == 1;
+            use.noise_like = random.whole(0, 1) == 1;
+            use.input_rms = 0.1 * static_cast<double>(random.whole(1, 3));
+            const ErrorBound known = deriver.derive(use), fresh = derive(chain.described, use);
+            REQUIRE((known.lower == fresh.lower && known.upper == fresh.upper && known.rms == fresh.rms));
+            REQUIRE((known.bias_lower == fresh.bias_lower && known.bias_upper == fresh.bias_upper));
+            REQUIRE(known.is_statistical == fresh.is_statistical);
+        }
+    }
+}

@@ -1,6 +1,7 @@
 // Limits that follow from the arithmetic: where they are refused, and what a start adds to them.
 #include <catch2/catch.hpp>
 
+#include "oracle/arithmetic/twin.hpp"
 #include "oracle/judge/admission.hpp"
 #include "oracle/judge/derived_limits.hpp"
 #include "oracle/judge/leftover.hpp"
@@ -88,7 +89,9 @@ TEST_CASE("derived: what a flush leaves of the case before is in the limits", "[
     for (const Start start : {Start::flush, Start::running}) {
         the_case.start = start;
         const double tail = std::pow(0.875, 84);
-        CHECK_THAT(derived_limits(plan, the_case, 1)->largest, WithinRel(from_reset.largest + tail, 1e-9));
+        const DerivedLimits limits = *derived_limits(plan, the_case, 1);
+        CHECK_THAT(limits.error.highest, WithinRel(from_reset.error.highest + tail, 1e-9));
+        CHECK_THAT(limits.error.lowest, WithinRel(from_reset.error.lowest - tail, 1e-9));
         const double count = start == Start::flush ? 3000.0 : 2917.0;
         const Leftover left = leftover(*described_channel(plan, the_case, 1), plan, the_case);
         CHECK_THAT(left.largest, WithinRel(tail, 1e-9));
@@ -130,11 +133,136 @@ TEST_CASE("derived: where samples are left out, the bias of the rest is held to 
         INFO(verdict.reason);
         if (level < 1.0) {
             // Floor to half-up through the gain 32 at zero frequency; sum |h| is larger.
-            CHECK(*bias.limit < 0.8 * *largest.limit);
+            CHECK(std::fabs(*bias.limit) < 0.8 * std::fabs(*largest.limit));
         } else {
-            CHECK(*bias.limit == *largest.limit);
+            CHECK(bias.note == largest.note);
         }
     }
+}
+
+namespace {
+
+/// What a board returns whose filter rounds so.
+std::vector<Code> rounded_response(Plan plan, const Case& the_case, Rounding rounding) {
+    plan.filter[0].arithmetic.rounding = rounding;
+    std::vector<Code> codes(static_cast<std::size_t>(the_case.stimulus->length_samples()));
+    fill_case_codes(plan, the_case, 0, codes);
+    const auto twin = make_twin(*described_channel(plan, the_case, 1));
+    REQUIRE(twin);
+    std::vector<Code> response(codes.size());
+    twin->process(codes, response);
+    return response;
+}
+
+RuleVerdict judged_with(Plan plan, Rounding promised, Rounding board, const Rule& rule) {
+    plan.filter[0].arithmetic.rounding = promised;
+    const Case the_case = noise_case(plan, rule);
+    return judge(plan, the_case, rounded_response(plan, the_case, board)).rules.at(0);
+}
+
+}  // namespace
+
+TEST_CASE("derived: a board that rounds up where floor was promised is beyond the upper end", "[judge]") {
+    const Plan plan = test::moving_average_plan();
+    const RuleVerdict right = judged_with(plan, Rounding::floor, Rounding::floor, derived_rule(plan));
+    CHECK(right.verdict == Verdict::pass);
+    const RuleVerdict wrong = judged_with(plan, Rounding::floor, Rounding::half_up, derived_rule(plan));
+    CHECK(wrong.verdict == Verdict::fail);
+    const JudgedFigure& largest = wrong.figures.at(0);
+    // Of 16 points the mean is a multiple of 1/16 LSB: half up errs by up to 1/2, floor never by more than 0.
+    CHECK(largest.name == "max");
+    CHECK(*largest.value == 0.5);
+    CHECK_THAT(*largest.limit, Catch::Matchers::WithinAbs(0.0, 1e-6));
+    CHECK_FALSE(largest.at_least);
+    CHECK_FALSE(largest.passed);
+    CHECK_THAT(*largest.margin, Catch::Matchers::WithinAbs(-0.5, 1e-6));
+    CHECK_THAT(largest.note, Catch::StartsWith("derived, -0.9375 .. "));
+    REQUIRE(wrong.first_bad);
+    CHECK(wrong.reason.find(" of 3000 samples beyond max") != std::string::npos);
+}
+
+TEST_CASE("derived: a board that floors where half-up was promised is beyond the lower end", "[judge]") {
+    const Plan plan = test::moving_average_plan();
+    CHECK(judged_with(plan, Rounding::half_up, Rounding::half_up, derived_rule(plan)).verdict == Verdict::pass);
+    const RuleVerdict wrong = judged_with(plan, Rounding::half_up, Rounding::floor, derived_rule(plan));
+    CHECK(wrong.verdict == Verdict::fail);
+    const JudgedFigure& largest = wrong.figures.at(0);
+    CHECK(*largest.value == -0.9375);
+    CHECK_THAT(*largest.limit, WithinRel(-0.4375, 1e-6));
+    CHECK(largest.at_least);
+    CHECK_THAT(*largest.margin, WithinRel(-0.5, 1e-6));
+    CHECK(largest.note == "derived, -0.4375 .. 0.5");
+}
+
+TEST_CASE("derived: a recursion that rounds the other way is seen by each end of error and bias", "[judge]") {
+    const Plan plan = one_pole_plan();
+    const Rule bias = test::rule(plan, "error", values({{"bias_lsb", std::string("derived")}}));
+    for (const Rule& rule : {derived_rule(plan), bias}) {
+        for (const auto& [promised, board] :
+             {std::pair{Rounding::floor, Rounding::half_up}, std::pair{Rounding::half_up, Rounding::floor}}) {
+            CHECK(judged_with(plan, promised, promised, rule).verdict == Verdict::pass);
+            CHECK(judged_with(plan, promised, board, rule).verdict == Verdict::fail);
+        }
+    }
+    // By its size alone the error of half-up, within 4 LSB, would pass for one of floor, within 7.
+    const DerivedLimits floored = [&] {
+        Plan other = plan;
+        other.filter[0].arithmetic.rounding = Rounding::floor;
+        return *derived_limits(other, noise_case(other, derived_rule(other)), 1);
+    }();
+    CHECK_THAT(floored.error.lowest, WithinRel(-7.0 * lsb, 1e-6));
+    CHECK_THAT(floored.error.highest, Catch::Matchers::WithinAbs(0.0, 1e-6 * lsb));
+}
+
+TEST_CASE("derived: a limit in numbers is one of the magnitude", "[judge]") {
+    const Plan plan = test::moving_average_plan();
+    const Rule rule = test::rule(plan, "error", values({{"max_lsb", 0.94}, {"bias_lsb", 0.5}}));
+    const RuleVerdict verdict = judged_with(plan, Rounding::floor, Rounding::floor, rule);
+    CHECK(verdict.verdict == Verdict::pass);
+    CHECK(*verdict.figures.at(0).value == 0.9375);
+    CHECK(*verdict.figures.at(0).limit == 0.94);
+    CHECK(verdict.figures.at(2).note == "negative");
+    CHECK(*verdict.figures.at(2).value > 0.0);
+}
+
+TEST_CASE("derived: a response that is not a number is beyond every end", "[judge]") {
+    Plan plan = test::moving_average_plan();
+    plan.signal.input = plan.signal.output = *sample_format("f32");
+    const Rule rule = test::rule(plan, "error", values({{"max_ratio", std::string("derived")}}));
+    plan.filter[0].arithmetic.structure = Structure::fresh_sum;
+    const Case the_case = noise_case(plan, rule);
+    std::vector<Code> response = test::right_response(plan, the_case);
+    CHECK(judge(plan, the_case, response).rules.at(0).verdict == Verdict::pass);
+    response[700] = 0x7fc00000;
+    const RuleVerdict verdict = judge(plan, the_case, response).rules.at(0);
+    CHECK(verdict.verdict == Verdict::fail);
+    REQUIRE(verdict.first_bad);
+    CHECK(verdict.first_bad->index == 700);
+}
+
+TEST_CASE("derived: what is kept for one filter or case is not told for another", "[judge]") {
+    Plan plan = one_pole_plan();
+    const Case the_case = noise_case(plan, derived_rule(plan));
+    const double half_up = derived_limits(plan, the_case, 1)->error.lowest;
+    CHECK(derived_limits(plan, the_case, 1)->error.lowest == half_up);
+    Plan floored = plan;
+    floored.filter[0].arithmetic.rounding = Rounding::floor;
+    CHECK(derived_limits(floored, the_case, 1)->error.lowest < 1.5 * half_up);
+    Plan slower = plan;
+    slower.filter[0].design = BiquadCascade{{{0.125, 0.0, 0.0, -0.75, 0.0}}};
+    CHECK(derived_limits(slower, the_case, 1)->error.lowest > 0.7 * half_up);
+    Plan finer = plan;
+    finer.signal.input = finer.signal.output = *sample_format("q31");
+    CHECK(derived_limits(finer, the_case, 1)->error.lowest > 1e-3 * half_up);
+    Case late = the_case;
+    late.start = Start::running;
+    late.start_samples = 20;
+    CHECK(derived_limits(plan, late, 1)->error.lowest < half_up - 1e-3);
+    const Case louder =
+        test::a_case(plan, "noise", values({{"level_codes", std::int64_t{3}}, {"length_samples", std::int64_t{3000}}}),
+                     the_case.rules);
+    // Three codes are no 6 bits: the worst case.
+    CHECK(derived_limits(plan, louder, 1)->rms > 2.0 * derived_limits(plan, the_case, 1)->rms);
 }
 
 TEST_CASE("exact: a flush that leaves less than half an LSB leaves something to the bit", "[judge]") {

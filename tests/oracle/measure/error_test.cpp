@@ -11,7 +11,7 @@ namespace {
 
 ErrorFigures figures_of(std::span<const double> reference, std::span<const double> response,
                         std::optional<double> limit = std::nullopt) {
-    ErrorMeasure measure(limit);
+    ErrorMeasure measure = limit ? ErrorMeasure(*limit) : ErrorMeasure();
     measure.add(reference, response);
     return measure.value();
 }
@@ -160,4 +160,21 @@ TEST_CASE("sums: compensated summation keeps what plain summation loses", "[meas
     for (int n = 0; n < 1000000; ++n) tenths.add(0.1);
     // 10^6 times the double next to 0.1, correctly rounded
     CHECK(tenths.value() == static_cast<double>(1000000.0L * static_cast<long double>(0.1)));
+}
+
+TEST_CASE("error: each end of a limit holds by itself", "[measure]") {
+    const std::vector<double> reference{0.0, 0.0, 0.0, 0.0, 0.0}, response{-0.75, 0.0, 0.125, 0.25, -1.0};
+    ErrorMeasure measure(ErrorEnds{-0.75, 0.125});
+    measure.add(std::span(reference).first(2), std::span(response).first(2));
+    CHECK((measure.value().lowest == -0.75 && measure.value().highest == 0.0));
+    CHECK(measure.value().beyond == 0);
+    measure.add(std::span(reference).subspan(2), std::span(response).subspan(2));
+    const ErrorFigures f = measure.value();
+    CHECK((f.lowest == -1.0 && f.highest == 0.25 && f.largest == 1.0));
+    CHECK((f.first_beyond == 3 && f.beyond == 2));
+    // Errors that are all of one sign have no other end.
+    const std::vector<double> low{-2.0, -1.0};
+    ErrorMeasure one_way(ErrorEnds{-2.0, 0.0});
+    one_way.add(std::span(reference).first(2), low);
+    CHECK((one_way.value().lowest == -2.0 && one_way.value().highest == -1.0 && one_way.value().beyond == 0));
 }

@@ -39,7 +39,7 @@ TEST_CASE("prediction report: points, sums and their formula", "[report]") {
                         "  point         step, LSB     error in steps  sum |h|  sum h^2  sum h  at the output, LSB\n"
                         "  stage 1, sum        0.5  3 errors, -1 .. 0        2      1.5      1             -3 .. 1\n"
                         "  at the output: a formula (a source)\n"
-                        "  largest 3, rms 3, bias -3 .. 1 LSB (worst case: the stimulus is no white noise)\n"));
+                        "  error -3 .. 1, rms 3, bias -3 .. 1 LSB (worst case: the stimulus is no white noise)\n"));
 }
 
 TEST_CASE("prediction report: twelve cases have a line, more are counted", "[report]") {
