@@ -39,21 +39,22 @@ auto members(const Median& x) {
     return std::tie(points);
 }
 
-template <class Cic>
-auto members_of_cic(const Cic& x) {
+auto members(const CicDecimator& x) {
+    const auto& [order, factor, delay, shift_bits, phase] = x;
+    return std::tie(order, factor, delay, shift_bits, phase);
+}
+auto members(const CicInterpolator& x) {
     const auto& [order, factor, delay, shift_bits] = x;
     return std::tie(order, factor, delay, shift_bits);
 }
-auto members(const CicDecimator& x) { return members_of_cic(x); }
-auto members(const CicInterpolator& x) { return members_of_cic(x); }
-
-template <class RateFir>
-auto members_of_rate_fir(const RateFir& x) {
+auto members(const FirDecimator& x) {
+    const auto& [taps, factor, phase] = x;
+    return std::tie(taps, factor, phase);
+}
+auto members(const FirInterpolator& x) {
     const auto& [taps, factor] = x;
     return std::tie(taps, factor);
 }
-auto members(const FirDecimator& x) { return members_of_rate_fir(x); }
-auto members(const FirInterpolator& x) { return members_of_rate_fir(x); }
 
 auto members(const StageArithmetic& x) {
     const auto& [coefficient_fraction_bits, accumulator_bits, rounding, output_overflow, stage_format, number,

@@ -47,7 +47,8 @@ static uint8_t* put_filter(uint8_t* to, const struct halflsb_filter* filter) {
     memcpy(to, facts, sizeof facts);
     to += sizeof facts;
 #if HALFLSB_RATES
-    if (filter->process_rate != NULL) to = halflsb_put16(halflsb_put16(to, filter->up), filter->down);
+    if (filter->process_rate != NULL)
+        to = halflsb_put16(halflsb_put16(to, halflsb_cycle(filter->up)), halflsb_cycle(filter->down));
 #endif
     return to;
 }

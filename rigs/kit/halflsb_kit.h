@@ -79,7 +79,7 @@ struct halflsb_filter {
     /* writes `count` values at `offset` of a table; 0 when out of range. NULL when tables is 0. */
     int (*load)(uint8_t table, uint16_t offset, const int32_t* values, uint8_t count);
 #if HALFLSB_RATES
-    uint16_t up, down;
+    uint16_t up, down;                                                   /* 0: 1 */
     uint16_t (*process_rate)(const void* in, void* out, uint16_t count); /* NULL: the rate does not change */
 #endif
 };

@@ -67,10 +67,10 @@ static uint32_t run(const struct halflsb_filter* filter, const void* in, void* o
     return count;
 }
 
-static int set_rate(struct shape* shape, const struct halflsb_filter* filter) {
-    shape->up = filter->process_rate == NULL ? 1u : filter->up;
-    shape->down = filter->process_rate == NULL ? 1u : filter->down;
-    return shape->down != 0;
+static void set_rate(struct shape* shape, const struct halflsb_filter* filter) {
+    const int changes = filter->process_rate != NULL;
+    shape->up = changes ? halflsb_cycle(filter->up) : 1u;
+    shape->down = changes ? halflsb_cycle(filter->down) : 1u;
 }
 
 static int changes_rate(const struct halflsb_filter* filter) { return filter->process_rate != NULL; }
@@ -101,7 +101,7 @@ static uint32_t run(const struct halflsb_filter* filter, const void* in, void* o
     filter->process(in, out, (uint16_t)count);
     return count;
 }
-#define set_rate(shape, filter) 1
+#define set_rate(shape, filter)
 #define changes_rate(filter) 0
 
 #endif
@@ -120,7 +120,8 @@ enum halflsb_reason halflsb_stream_open(const struct halflsb_board* board, const
     shape.fraction = halflsb_word_alignment((uint8_t)shape.in) - 1u;
     shape.in *= filter->channels_in;
     shape.out = (uint32_t)halflsb_word_bytes(filter->output) * filter->channels_out;
-    if (shape.in == 0 || shape.out == 0 || !set_rate(&shape, filter)) return HALFLSB_NOT_SUPPORTED;
+    if (shape.in == 0 || shape.out == 0) return HALFLSB_NOT_SUPPORTED;
+    set_rate(&shape, filter);
     /* Smaller than asked for when this filter's words are wider, or more of them come back. */
     block = largest_block(&shape, block);
     if (block == 0) return HALFLSB_NOT_SUPPORTED;

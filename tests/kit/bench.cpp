@@ -93,13 +93,15 @@ int load(std::uint8_t table, std::uint16_t offset, const std::int32_t* values, s
 }
 
 const halflsb_filter filters[filter_count] = {
-    {"double", HALFLSB_CALL, HALFLSB_Q15, HALFLSB_Q15, 1, 1, 0, reset<double_filter>, process_double, nullptr},
-    {"sum", HALFLSB_BUFFER, HALFLSB_I16, HALFLSB_I32, 1, 1, 0, reset<sum_filter>, process_sum, nullptr},
-    {"narrow", HALFLSB_CONVERTER, HALFLSB_Q31, HALFLSB_Q15, 1, 1, 0, reset<narrow_filter>, process_narrow, nullptr},
-    {"two", HALFLSB_CALL, HALFLSB_Q15, HALFLSB_Q15, 2, 2, 0, reset<two_filter>, process_two, nullptr},
-    {"table", HALFLSB_CALL, HALFLSB_Q15, HALFLSB_Q15, 1, 1, 1, reset<table_filter>, process_table, load},
+    {"double", HALFLSB_CALL, HALFLSB_Q15, HALFLSB_Q15, 1, 1, 0, reset<double_filter>, process_double,
+     nullptr KIT_STEADY},
+    {"sum", HALFLSB_BUFFER, HALFLSB_I16, HALFLSB_I32, 1, 1, 0, reset<sum_filter>, process_sum, nullptr KIT_STEADY},
+    {"narrow", HALFLSB_CONVERTER, HALFLSB_Q31, HALFLSB_Q15, 1, 1, 0, reset<narrow_filter>, process_narrow,
+     nullptr KIT_STEADY},
+    {"two", HALFLSB_CALL, HALFLSB_Q15, HALFLSB_Q15, 2, 2, 0, reset<two_filter>, process_two, nullptr KIT_STEADY},
+    {"table", HALFLSB_CALL, HALFLSB_Q15, HALFLSB_Q15, 1, 1, 1, reset<table_filter>, process_table, load KIT_STEADY},
     {"other double, 24 bytes...and more", HALFLSB_CALL, HALFLSB_Q15, HALFLSB_Q15, 1, 1, 0, reset<other_filter>,
-     process_other, nullptr},
+     process_other, nullptr KIT_STEADY},
 };
 const std::uint8_t build_id[20] = {1, 2, 3, 4, 5, 0, 0, 8, 9, 10, 11, 12, 13, 14, 15, 16, 17, 18, 19, 255};
 

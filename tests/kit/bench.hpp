@@ -9,6 +9,13 @@
 
 #include "rigs/kit/halflsb_kit.h"
 
+/// What a filter that keeps the rate has behind `load`.
+#if HALFLSB_RATES
+#define KIT_STEADY , 0, 0, nullptr
+#else
+#define KIT_STEADY
+#endif
+
 namespace kit_bench {
 
 using Bytes = std::vector<std::uint8_t>;

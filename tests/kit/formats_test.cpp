@@ -90,7 +90,7 @@ void power_up_with(unsigned input, unsigned output, unsigned channels_in = 1, un
               0,
               reset,
               process<0>,
-              nullptr};
+              nullptr KIT_STEADY};
     any[1] = any[0];
     any[1].process = process<1>;
     board().filters = any;
