@@ -8,21 +8,14 @@
 #pragma once
 
 #include <cstddef>
-#include <map>
 #include <optional>
-#include <string>
-#include <string_view>
 #include <vector>
 
+#include "runner/config/plan_axes.hpp"
 #include "runner/config/problems.hpp"
 #include "runner/config/toml_tree.hpp"
 
 namespace halflsb {
-
-inline constexpr std::string_view each_word = "each";
-inline constexpr std::string_view each_help =
-    "One case for each combination of the values listed under its keys: \"stimulus.level_ratio\" = [0.1, 0.5]. A "
-    "value may be a table with a name that sets several keys.";
 
 /// The most cases a plan may have once all of them are expanded.
 inline constexpr std::size_t most_cases = 10'000;
@@ -34,7 +27,7 @@ public:
     /// Both must outlive this. What is wrong with [case.each] is reported to `problems`.
     CaseExpansion(const TomlValue& case_table, Problems& problems);
 
-    bool is_clean() const { return is_clean_; }
+    bool is_clean() const { return each_axes_.is_clean; }
     /// Combinations; 1 without [case.each]. A double, because the product may be beyond any integer.
     double count() const;
     /// Values in all of the expanded tables together.
@@ -46,35 +39,9 @@ public:
     Place place() const;
 
 private:
-    struct Setting {
-        std::string path;
-        Place key_place;
-        const TomlValue* value;
-    };
-    struct Choice {
-        std::string label;
-        Place place;
-        std::vector<Setting> settings;
-    };
-    struct Axis {
-        std::string key;
-        Place key_place;
-        std::vector<Choice> choices;
-        std::map<std::string, Place> labels;
-    };
-
-    void read_keys(const TomlValue& table, const std::string& prefix, Problems& problems);
-    void read_axis(std::string key, const TomlEntry& entry, Problems& problems);
-    void read_choice(Axis& axis, const TomlValue& value, bool sets_keys, Problems& problems);
-    void read_settings(Choice& choice, const TomlValue& table, const std::string& prefix, Problems& problems);
-    bool check_path(const Setting& setting, Problems& problems);
-    void refuse_twice_set(Problems& problems);
-    void refuse(Problems& problems, Place place, std::string_view problem, std::string_view remedy);
-
     const TomlValue& table_;
     const TomlEntry* each_;
-    std::vector<Axis> axes_;
-    bool is_clean_ = true;
+    EachAxes each_axes_;
 };
 
 /// Reports a plan of more than most_cases cases or most_case_values values, at the case that goes beyond. Each case
