@@ -114,7 +114,7 @@ private:
             term.lowest = e.lowest / point.step;
             term.highest = e.highest / point.step;
         }
-        if (!sums.is_one_response) {
+        if (!sums.has_signs) {
             term.upper = product(e.largest(), sums.l1());
             term.lower = -term.upper;
             term.bias_lower = term.lower;

@@ -4,6 +4,7 @@
 #include <cmath>
 
 #include "oracle/filters/impulse_run.hpp"
+#include "oracle/filters/multirate_norms.hpp"
 #include "oracle/filters/rates.hpp"
 #include "oracle/filters/spaced_chain.hpp"
 
@@ -110,20 +111,25 @@ private:
     PathSums sums_;
 };
 
+/// No one impulse response: what is known is how large the output of something within -1 .. 1 can get, whenever it came.
+PathSums sums_without_response(const FilterChain& path, std::size_t lags) {
+    PathSums known;
+    known.is_one_response = false;
+    const auto phases = is_linear(path) ? sums_of_changing_rate(path, tail) : std::nullopt;
+    known.has_signs = phases.has_value();
+    known.largest = phases ? phases->sizes : l1_norm(path);
+    known.positive = known.step_positive = phases ? phases->positive : known.largest;
+    known.negative = known.step_negative = phases ? phases->negative : -known.largest;
+    known.dc = known.largest;
+    known.squares = known.step_squares = known.largest * known.largest;
+    known.autocorrelation.assign(std::max<std::size_t>(lags, 1), known.squares);
+    return known;
+}
+
 }  // namespace
 
 PathSums path_sums(const FilterChain& path, std::int64_t samples, std::size_t lags, bool has_past) {
-    if (!is_linear(path) || changes_rate(path)) {
-        // No one impulse response: what is known is how large the output of something within -1 .. 1 can get.
-        PathSums known;
-        known.positive = known.step_positive = l1_norm(path);
-        known.negative = known.step_negative = -known.positive;
-        known.dc = known.positive;
-        known.squares = known.step_squares = known.positive * known.positive;
-        known.autocorrelation.assign(std::max<std::size_t>(lags, 1), known.squares);
-        known.is_one_response = false;
-        return known;
-    }
+    if (!is_linear(path) || changes_rate(path)) return sums_without_response(path, lags);
     const SpacedChain spaced = without_spacing(path);
     Sums sums(std::max<std::int64_t>(samples, 1), lags, spaced.spacing, has_past);
     ImpulseRun run(spaced.chain);

@@ -24,11 +24,15 @@ struct PathSums {
     /// -1 .. 1 can put into them. 0 when not asked for.
     double past_positive = 0.0, past_negative = 0.0, past_rms = 0.0;
 
-    /// False around a median and where the rate changes: then positive and -negative are the largest output, of either
-    /// sign, for inputs within -1 .. 1, and the others no smaller than what they stand for.
+    /// False around a median and where the rate changes: then `largest` is the largest output, of either sign, for inputs
+    /// within -1 .. 1, positive and negative are those of the output phase that has the most of each, and the others no
+    /// smaller than what they stand for.
     bool is_one_response = true;
+    /// False around a median: positive and -negative are the largest output too.
+    bool has_signs = true;
+    double largest = 0.0;
 
-    double l1() const { return is_one_response ? positive - negative : positive; }
+    double l1() const { return is_one_response ? positive - negative : largest; }
 };
 
 /// Runs the path until its rest is proven to be below 1e-12 of sum |h| (impulse_run.hpp), at most 2^22 samples; `lags`

@@ -67,13 +67,18 @@ static uint32_t run(const struct halflsb_filter* filter, const void* in, void* o
     return count;
 }
 
-static void set_rate(struct shape* shape, const struct halflsb_filter* filter) {
+static int set_rate(struct shape* shape, const struct halflsb_filter* filter) {
     const int changes = filter->process_rate != NULL;
     shape->up = changes ? halflsb_cycle(filter->up) : 1u;
     shape->down = changes ? halflsb_cycle(filter->down) : 1u;
+    return shape->up * shape->out <= HALFLSB_BLOCK_BYTES; /* and no product below leaves its 32 bits */
 }
 
-static int changes_rate(const struct halflsb_filter* filter) { return filter->process_rate != NULL; }
+static int same_rate(const struct halflsb_filter* filter) {
+    struct shape shape = stream.shape;
+    (void)set_rate(&shape, filter);
+    return shape.up == stream.shape.up && shape.down == stream.shape.down;
+}
 
 /* Of an answer's samples, with the input that stands there before. */
 static uint32_t room_of(const struct shape* shape, uint32_t count) {
@@ -101,8 +106,8 @@ static uint32_t run(const struct halflsb_filter* filter, const void* in, void* o
     filter->process(in, out, (uint16_t)count);
     return count;
 }
-#define set_rate(shape, filter)
-#define changes_rate(filter) 0
+#define set_rate(shape, filter) 1
+#define same_rate(filter) 1
 
 #endif
 
@@ -120,8 +125,7 @@ enum halflsb_reason halflsb_stream_open(const struct halflsb_board* board, const
     shape.fraction = halflsb_word_alignment((uint8_t)shape.in) - 1u;
     shape.in *= filter->channels_in;
     shape.out = (uint32_t)halflsb_word_bytes(filter->output) * filter->channels_out;
-    if (shape.in == 0 || shape.out == 0) return HALFLSB_NOT_SUPPORTED;
-    set_rate(&shape, filter);
+    if (shape.in == 0 || shape.out == 0 || !set_rate(&shape, filter)) return HALFLSB_NOT_SUPPORTED;
     /* Smaller than asked for when this filter's words are wider, or more of them come back. */
     block = largest_block(&shape, block);
     if (block == 0) return HALFLSB_NOT_SUPPORTED;
@@ -207,7 +211,7 @@ static enum halflsb_reason select_filter(const struct halflsb_board* board, cons
     if (fields[0] >= board->filter_count) return HALFLSB_NO_SUCH_THING;
     next = &board->filters[fields[0]];
     if (next->input != was->input || next->output != was->output || next->channels_in != was->channels_in ||
-        next->channels_out != was->channels_out || changes_rate(next) || changes_rate(was))
+        next->channels_out != was->channels_out || !same_rate(next))
         return HALFLSB_OUT_OF_RANGE;
     stream.filter = next;
     next->reset();

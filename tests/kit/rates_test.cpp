@@ -1,5 +1,6 @@
 // Filters that return fewer instants than they take, or more: the greeting's tail, the blocks granted, and that no
 // input is overwritten before its turn.
+#include <algorithm>
 #include <catch2/catch.hpp>
 #include <cstring>
 
@@ -22,6 +23,7 @@ struct Rate {
 Rate rate{};
 halflsb_filter filter{};
 unsigned in_bytes = 0;
+unsigned first_byte = 0;  // where the first byte in memory travels within its word
 unsigned place = 0;
 unsigned calls = 0;
 
@@ -56,7 +58,7 @@ Bytes expected(const Bytes& sent, unsigned first_input) {
             if (((first_input + n) * rate.rise + copy) % rate.fall != rate.phase) continue;
             Bytes instant(sent.begin() + static_cast<std::ptrdiff_t>(n * in_bytes),
                           sent.begin() + static_cast<std::ptrdiff_t>((n + 1) * in_bytes));
-            instant[0] = static_cast<std::uint8_t>(instant[0] + copy);
+            instant[first_byte] = static_cast<std::uint8_t>(instant[first_byte] + copy);
             out = out + instant;
         }
     }
@@ -66,7 +68,9 @@ Bytes expected(const Bytes& sent, unsigned first_input) {
 void use(const Rate& chosen, unsigned format, unsigned channels) {
     rate = chosen;
     place = 0;
-    in_bytes = (format == HALFLSB_Q31 ? 4 : format == HALFLSB_Q15 ? 2 : 1) * channels;
+    const unsigned word = format == HALFLSB_Q31 ? 4 : format == HALFLSB_Q15 ? 2 : 1;
+    in_bytes = word * channels;
+    first_byte = is_swapped ? word - 1 : 0;
     const auto count = static_cast<std::uint8_t>(channels);
     filter = {"rate",
               HALFLSB_CALL,
@@ -144,7 +148,8 @@ TEST_CASE("rates: a block is granted as far as its answers fit", "[kit]") {
     CHECK(start(0, HALFLSB_BLOCK_SAMPLES).block == HALFLSB_BLOCK_SAMPLES);
     if (HALFLSB_BLOCK_BYTES < 8) return;
     use({4, 1, 4, 1, 0}, HALFLSB_Q15, 1);
-    CHECK(start(0, HALFLSB_BLOCK_SAMPLES).block == std::min(HALFLSB_BLOCK_BYTES / 8, HALFLSB_BLOCK_SAMPLES));
+    CHECK(start(0, HALFLSB_BLOCK_SAMPLES).block ==
+          static_cast<unsigned>(std::min(HALFLSB_BLOCK_BYTES / 8, HALFLSB_BLOCK_SAMPLES)));
 }
 
 TEST_CASE("rates: an answer without an instant is sent again as any other", "[kit]") {

@@ -42,11 +42,19 @@ std::vector<std::uint8_t> noise(const FilterParts& parts, std::size_t instants) 
 std::vector<std::uint8_t> in_blocks(const FilterParts& parts, std::vector<std::uint8_t> words, std::size_t block) {
     const std::size_t instant = word_bytes(parts.format) * parts.channel_count();
     parts.reset();
+    std::vector<std::uint8_t> returned(words.size() * parts.up);  // where the rate changes
+    std::size_t written = 0;
     for (std::size_t at = 0; at < words.size(); at += block * instant) {
         const auto count = static_cast<std::uint16_t>(std::min(block, (words.size() - at) / instant));
-        parts.process(words.data() + at, words.data() + at, count);  // in place, as the kit does
+        if (parts.process_rate) {
+            written += parts.process_rate(words.data() + at, returned.data() + written * instant, count);
+        } else {
+            parts.process(words.data() + at, words.data() + at, count);  // in place, as the kit does
+        }
     }
-    return words;
+    if (!parts.process_rate) return words;
+    returned.resize(written * instant);
+    return returned;
 }
 
 }  // namespace
