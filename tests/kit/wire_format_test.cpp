@@ -6,6 +6,7 @@
 #include <string>
 
 #include "tests/kit/bench.hpp"
+#include "tests/support/source_dir.hpp"
 
 extern "C" {
 #include "rigs/kit/cobs.h"
@@ -17,7 +18,7 @@ using namespace kit_bench;
 namespace {
 
 std::vector<std::vector<std::string>> rows_of(const std::string& name) {
-    std::ifstream file(std::string(HALFLSB_SOURCE_DIR "/tests/published/") + name);
+    std::ifstream file(halflsb::test::source_path("tests/published/" + name));
     REQUIRE(file);
     std::vector<std::vector<std::string>> rows;
     for (std::string line; std::getline(file, line);) {

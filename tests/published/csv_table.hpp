@@ -8,12 +8,14 @@
 #include <string>
 #include <vector>
 
+#include "tests/support/source_dir.hpp"
+
 namespace halflsb::testing {
 
 class CsvTable {
 public:
     explicit CsvTable(const std::string& name) {
-        std::ifstream file(std::string(HALFLSB_SOURCE_DIR) + "/tests/published/" + name);
+        std::ifstream file(test::source_path("tests/published/" + name));
         INFO("tests/published/" << name);
         REQUIRE(file.good());
         std::string line;

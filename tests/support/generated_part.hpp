@@ -8,10 +8,12 @@
 #include <iterator>
 #include <string>
 
+#include "tests/support/source_dir.hpp"
+
 namespace halflsb::test {
 
 inline std::string page_text(const std::string& page) {
-    std::ifstream file(std::string(HALFLSB_SOURCE_DIR) + "/docs/" + page, std::ios::binary);
+    std::ifstream file(source_path("docs/" + page), std::ios::binary);
     return {std::istreambuf_iterator<char>(file), {}};
 }
 
@@ -24,7 +26,7 @@ inline void check_generated_part(const std::string& page, const std::string& nam
     REQUIRE(to != std::string::npos);
     if (std::getenv("HALFLSB_UPDATE_DOCS") != nullptr) {
         text = text.substr(0, from + begin.size()) + expected + text.substr(to);
-        std::ofstream(std::string(HALFLSB_SOURCE_DIR) + "/docs/" + page, std::ios::binary) << text;
+        std::ofstream(source_path("docs/" + page), std::ios::binary) << text;
     }
     INFO("HALFLSB_UPDATE_DOCS=1 writes docs/" + page + " anew");
     CHECK(page_text(page).find(begin + expected + end) != std::string::npos);

@@ -5,6 +5,7 @@
 
 #include "oracle/filters/filter.hpp"
 #include "tests/oracle/filters/coefficient_reading.hpp"
+#include "tests/support/source_dir.hpp"
 
 using namespace halflsb;
 using namespace halflsb::testing;
@@ -12,7 +13,7 @@ using namespace halflsb::testing;
 namespace {
 
 std::string file_of(const std::string& path) {
-    std::ifstream file(std::string(HALFLSB_SOURCE_DIR) + "/" + path, std::ios::binary);
+    std::ifstream file(test::source_path(path), std::ios::binary);
     REQUIRE(file);
     return {std::istreambuf_iterator<char>(file), std::istreambuf_iterator<char>()};
 }

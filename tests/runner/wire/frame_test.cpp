@@ -9,6 +9,7 @@
 #include <string>
 
 #include "tests/support/model_board.hpp"
+#include "tests/support/source_dir.hpp"
 
 using namespace halflsb;
 using Bytes = std::vector<std::byte>;
@@ -85,7 +86,7 @@ Bytes random_content(std::mt19937_64& random, std::size_t size) {
 
 TEST_CASE("crc: the values of the published table", "[wire]") {
     // CRC-32/ISO-HDLC, check value SEEN (Cook's catalogue); the others COMPUTED. Columns of crc-check-values.csv.
-    std::ifstream file(HALFLSB_SOURCE_DIR "/tests/published/crc-check-values.csv");
+    std::ifstream file(test::source_path("tests/published/crc-check-values.csv"));
     std::string line;
     while (std::getline(file, line) && line.rfind("CRC-32/ISO-HDLC,", 0) != 0) {
     }
@@ -112,7 +113,7 @@ TEST_CASE("crc: the values of the published table", "[wire]") {
 
 TEST_CASE("cobs: the published vectors, both ways", "[wire]") {
     // cobs-vectors.csv: S = SEEN in a library's test suite, W = SEEN-2 as an encyclopaedia's table, C = COMPUTED.
-    std::ifstream file(HALFLSB_SOURCE_DIR "/tests/published/cobs-vectors.csv");
+    std::ifstream file(test::source_path("tests/published/cobs-vectors.csv"));
     std::string line;
     REQUIRE(std::getline(file, line));
     int vectors = 0;
