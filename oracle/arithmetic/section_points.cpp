@@ -1,0 +1,127 @@
+// Which sums each structure has, and where they go: docs/arithmetic.md, "Stages".
+#include "oracle/arithmetic/section_points.hpp"
+
+#include <algorithm>
+
+#include "oracle/arithmetic/family.hpp"
+
+namespace halflsb {
+
+namespace {
+
+using Place = RoundingPoint::Place;
+
+class SectionPoints {
+public:
+    explicit SectionPoints(StageSums& stage_sums) : here_(stage_sums) {}
+
+    void find(const SectionCoefficients& s, std::size_t j, bool is_last) {
+        bool stays_wide = false;
+        here_.find_spare_of_state(s.forward, s.feedback);
+        if (here_.stage.structure == Structure::direct_2) {
+            of_direct_2(s, j);
+        } else if (here_.stage.structure == Structure::transposed_2) {
+            of_transposed(s, j);
+        } else {
+            if (here_.stage.structure == Structure::direct_1) of_direct_1(s, j);
+            if (here_.stage.structure == Structure::difference) of_difference(s.forward.front());
+            if (here_.stage.structure == Structure::leak) of_leak(s.forward.front());
+            stays_wide = here_.stage.rounding_at == RoundingAt::output && !is_last;
+            if (!stays_wide) here_.add_output(j);
+        }
+        here_.in = stays_wide ? here_.stage.state : here_.stage.out.word;
+        here_.in_spare = stays_wide ? here_.state_spare : 0;
+        if (!stays_wide && here_.stage.structure != Structure::direct_2 &&
+            here_.stage.structure != Structure::transposed_2) {
+            here_.set_spare_out(here_.stage.state.fraction_bits - here_.state_spare);
+        }
+    }
+
+private:
+    std::vector<Term> terms_of(const std::vector<double>& forward, const Word& word) const {
+        std::vector<Term> terms;
+        for (const double b : forward) terms.push_back(here_.term(b, word));
+        return terms;
+    }
+
+    void of_direct_1(const SectionCoefficients& s, std::size_t j) {
+        SumTarget target = here_.at_section("sum", j, Place::loop);
+        target.saves_fraction = here_.stage.fraction_saving;
+        target.fraction_bits = here_.stage.state.fraction_bits;
+        std::vector<Term> terms = terms_of(s.forward, here_.in);
+        for (const double a : s.feedback) terms.push_back(here_.feedback(a, here_.stage.state));
+        here_.sums.add_sum(std::move(terms), target);
+    }
+
+    void of_direct_2(const SectionCoefficients& s, std::size_t j) {
+        const Word& state = here_.stage.state;
+        SumTarget first = here_.at_section("state", j, Place::entry);
+        first.saves_fraction = here_.stage.fraction_saving;
+        first.fraction_bits = state.fraction_bits;
+        first.from_input = path_to_states(s, first.node);
+        std::vector<Term> terms{here_.whole(here_.in)};
+        for (const double a : s.feedback) terms.push_back(here_.feedback(a, state));
+        here_.sums.add_sum(std::move(terms), first);
+        SumTarget second = here_.at_section("output", j, Place::behind);
+        second.saves_fraction = here_.stage.fraction_saving;
+        second.rounding = here_.stage.output_rounding;
+        second.from_input_of_terms = first.from_input;
+        second.multiplies_input = false;
+        here_.sums.add_sum(terms_of(s.forward, state), second);
+    }
+
+    // What the states lose comes in at the summing point of y, a sample or more later.
+    void of_transposed(const SectionCoefficients& s, std::size_t j) {
+        here_.sums.add_sum({here_.whole(here_.stage.state), here_.term(s.forward.front(), here_.in)},
+                           here_.at_section("output", j, Place::loop));
+        const std::size_t order = std::max(s.forward.size() - 1, s.feedback.size());
+        for (std::size_t k = 1; k <= order; ++k) {
+            SumTarget state = here_.at_section("state " + std::to_string(k), j, Place::loop);
+            state.fraction_bits = here_.stage.state.fraction_bits;
+            std::vector<Term> terms;
+            if (k < order) terms.push_back(here_.whole(here_.stage.state));
+            if (k < s.forward.size()) terms.push_back(here_.term(s.forward[k], here_.in));
+            if (k <= s.feedback.size()) terms.push_back(here_.feedback(s.feedback[k - 1], here_.stage.out.word));
+            here_.sums.add_sum(std::move(terms), state);
+        }
+    }
+
+    FilterChain path_to_states(const SectionCoefficients& s, const FilterNode& node) const {
+        if (family_of(here_.stage.stage) != Family::recursion) return path_to_state(here_.exact.stages, node);
+        FilterChain path = here_.exact_up_to(here_.index);
+        std::vector<double> a{1.0};
+        a.insert(a.end(), s.feedback.begin(), s.feedback.end());
+        FilterStage loop;
+        loop.design = Recursion{{1.0}, a};
+        path.push_back(loop);
+        return path;
+    }
+
+    void of_difference(double k) {
+        const Word difference{wide_bits, std::max(here_.in.fraction_bits, here_.stage.state.fraction_bits)};
+        SumTarget target = here_.at_section("product", 0, Place::loop);
+        target.fraction_bits = here_.stage.state.fraction_bits;
+        target.multiplies_input = false;
+        here_.sums.add_sum({here_.term(k, difference)}, target);
+    }
+
+    void of_leak(double k) {
+        SumTarget target = here_.at_section("product of input", 0, Place::loop);
+        target.fraction_bits = here_.stage.state.fraction_bits;
+        here_.sums.add_product(here_.term(k, here_.in), target, 1.0);
+        target.what = "product of state";
+        target.from_input_of_terms = target.from_input;
+        target.multiplies_input = false;
+        here_.sums.add_product(here_.term(k, here_.stage.state), target, -1.0);
+    }
+
+    StageSums& here_;
+};
+
+}  // namespace
+
+void add_section(StageSums& stage_sums, const SectionCoefficients& section, std::size_t section_index, bool is_last) {
+    SectionPoints(stage_sums).find(section, section_index, is_last);
+}
+
+}  // namespace halflsb

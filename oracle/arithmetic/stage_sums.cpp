@@ -1,0 +1,103 @@
+#include "oracle/arithmetic/stage_sums.hpp"
+
+#include <algorithm>
+#include <bit>
+#include <cmath>
+#include <limits>
+
+#include "oracle/arithmetic/family.hpp"
+
+namespace halflsb {
+
+StageSums::StageSums(const DescribedChain& chain, const ExactChain& exact_chain, std::size_t stage_index, int spare)
+    : stage(chain.stages[stage_index]),
+      exact(exact_chain),
+      index(stage_index),
+      in(stage.in.word),
+      in_spare(spare),
+      sums(stage, stage_index) {}
+
+int StageSums::spare_of(const Word& word) const {
+    if (&word == &in || &word == &stage.in.word) return in_spare;
+    return &word == &stage.state ? state_spare : 0;
+}
+
+Term StageSums::whole(const Word& word) const { return {1.0, 1, word.fraction_bits, word, spare_of(word)}; }
+
+Term StageSums::term(double coefficient, const Word& word) const {
+    const int bits = stage.coefficient_fraction_bits;
+    const bool is_known = stage.coefficients_are_said;
+    return {coefficient, is_known ? static_cast<std::int64_t>(std::ldexp(coefficient, bits)) : 1,
+            word.fraction_bits + bits, word, spare_of(word)};
+}
+
+Term StageSums::feedback(double a, const Word& word) const {
+    const bool is_subtracted = stage.feedback_coefficients == FeedbackCoefficients::subtracted;
+    Term product = term(is_subtracted ? a : -a, word);
+    product.is_feedback = true;
+    product.is_subtracted = is_subtracted;
+    return product;
+}
+
+int StageSums::bits_of_products(const std::vector<double>& coefficients, int word_bits) const {
+    const int f = stage.coefficient_fraction_bits;
+    if (!stage.coefficients_are_said) return word_bits + f;
+    int common = f;
+    for (const double c : coefficients) {
+        const auto stored = static_cast<std::uint64_t>(static_cast<std::int64_t>(std::ldexp(c, f)));
+        if (stored != 0) common = std::min(common, std::countr_zero(stored));
+    }
+    return word_bits + f - common;
+}
+
+void StageSums::find_spare_of_state(const std::vector<double>& forward, const std::vector<double>& fed_back) {
+    const Word& state = stage.state;
+    int bits = state.fraction_bits;  // a leak has no accumulator
+    if (stage.structure != Structure::leak) bits = stage.accumulator_fraction_bits.value_or(bits);
+    if (stage.structure == Structure::transposed_2) {
+        bits = std::max(bits_of_products(forward, in_bits()), bits_of_products(fed_back, stage.out.word.fraction_bits));
+    }
+    state_spare = std::max(0, state.fraction_bits - bits);
+}
+
+void StageSums::set_spare_out(int bits) { in_spare = std::max(0, stage.out.word.fraction_bits - bits); }
+
+void StageSums::add_output(std::size_t section) {
+    const int bits = stage.state.fraction_bits - stage.out.word.fraction_bits;
+    if (bits <= 0) return;
+    constexpr double unlimited = std::numeric_limits<double>::infinity();
+    SumTarget target = at_section("output", section, RoundingPoint::Place::behind);
+    target.rounding = stage.output_rounding;
+    sums.add_shortening(
+        target, {std::ldexp(1.0, bits), -unlimited, unlimited, std::ldexp(1.0, std::max(0, bits - state_spare))});
+}
+
+FilterChain StageSums::exact_up_to(std::size_t stage_end) const {
+    const auto first = exact.stages.begin();
+    return FilterChain(first, first + static_cast<std::ptrdiff_t>(exact.first_of[stage_end]));
+}
+
+SumTarget StageSums::behind(std::string what) const {
+    SumTarget target;
+    target.what = std::move(what);
+    target.node.stage = exact.first_of[index + 1] - 1;
+    target.fraction_bits = stage.out.word.fraction_bits;
+    target.rounding = stage.rounding;
+    target.from_input = exact_up_to(index + 1);
+    target.from_input_of_terms = exact_up_to(index);
+    return target;
+}
+
+SumTarget StageSums::at_section(std::string what, std::size_t section, RoundingPoint::Place place) const {
+    SumTarget target = behind(std::move(what));
+    if (family_of(stage.stage) == Family::sections) {
+        target.what = "section " + std::to_string(section + 1) + ", " + target.what;
+    }
+    target.place = place;
+    target.node = {exact.first_of[index], section, false};
+    target.from_input = path_from_input(exact.stages, target.node);
+    if (section > 0) target.from_input_of_terms = path_from_input(exact.stages, {target.node.stage, section - 1});
+    return target;
+}
+
+}  // namespace halflsb
