@@ -73,7 +73,7 @@ TEST_CASE("rates: a right response passes in blocks of any size", "[judge]") {
         CHECK(refusals(plan, the_case).empty());
         const auto response = test::right_response(plan, the_case);
         CHECK(static_cast<std::int64_t>(response.size()) == returned_samples(plan, the_case));
-        for (const std::size_t block : {1, 7, 4096, 100000}) {
+        for (const std::size_t block : {1u, 7u, 4096u, 100000u}) {
             const auto judgement = test::judge(plan, the_case, response, block);
             CHECK(judgement.latency_told);
             REQUIRE(judgement.rules.size() == 2);
