@@ -1,18 +1,12 @@
 // What a plan asks that its stimuli cannot answer: found on paper, refused before anything is streamed.
 #pragma once
 
-#include <string>
 #include <vector>
 
 #include "oracle/judge/plan.hpp"
+#include "oracle/judge/refusal.hpp"
 
 namespace halflsb {
-
-struct Refusal {
-    PlanPosition position;
-    std::string problem;
-    std::string remedy;  ///< names a stimulus that would do, where there is one
-};
 
 /// Rules of the case that this stimulus cannot answer: a written latency rule where the reference of a driven
 /// channel looks the same at another lag, a response band without power or bins or of a filter that is not linear,

@@ -5,6 +5,7 @@
 #include <cstdlib>
 
 #include "oracle/judge/latency_sigma.hpp"
+#include "oracle/judge/rule_kinds.hpp"
 
 namespace halflsb {
 namespace {
@@ -37,12 +38,12 @@ ChannelJudge::ChannelJudge(const Plan& plan, const Case& the_case, int channel)
       expected_lag_(expected_lag_of(the_case)),
       wanted_(wanted_references(the_case, channel)),
       reference_(plan, the_case, channel, wanted_),
-      derived_(asked_limits(plan, the_case, channel)),
-      pass_(plan, the_case, channel, expected_lag_, derived_),
+      judged_{plan, the_case, channel, asked_limits(plan, the_case, channel)},
+      pass_(judged_, expected_lag_),
       window_(lag_window_of(plan, the_case)),
       lag_(window_, expected_lag_, first_lag_sample(plan, the_case, window_)),
       discrimination_(window_, first_lag_sample(plan, the_case, window_)),
-      evidence_needed_(evidence_needed(the_case, plan.signal, derived_)) {}
+      evidence_needed_(evidence_needed(the_case, plan.signal, judged_.derived)) {}
 
 void ChannelJudge::add(std::span<const Code> sent, std::span<const Code> response) {
     const ReferenceBlock block = reference_.next(sent);
@@ -71,8 +72,7 @@ bool ChannelJudge::begin_second_pass() {
     lags_ = lag_.value();
     const int measured = lags_->best_lag;
     if (!std::isfinite(lags_->residual_at(measured)) || measured == expected_lag_) return false;
-    second_.emplace(SecondPass{AlignedPass(plan_, case_, channel_, measured, derived_),
-                               ReferenceSource(plan_, case_, channel_, wanted_)});
+    second_.emplace(SecondPass{AlignedPass(judged_, measured), ReferenceSource(plan_, case_, channel_, wanted_)});
     return true;
 }
 
@@ -87,11 +87,10 @@ ChannelJudge::Latency ChannelJudge::latency_found() const {
     if (!std::isfinite(lags_->residual_at(measured))) return Latency::not_finite;
     if (measured == expected_lag_) return Latency::as_expected;
     const bool is_clear = lags_->residual_at(measured) * 100.0 <= lags_->residual_at(expected_lag_);
-    const bool meets_limits =
-        second_->pass.has_error_rules() && second_->pass.error_rules_pass(second_->reference.rails());
+    const bool meets_limits = second_->pass.passes<ErrorRule>(second_->reference.rails());
     if (is_clear || meets_limits) return Latency::other;
     // Codes that wrap can fit another lag better by squares; equal to the bit they fit where they are.
-    return pass_.is_exact() ? Latency::as_expected : Latency::fits_nowhere;
+    return pass_.passes<ExactRule>(nullptr) ? Latency::as_expected : Latency::fits_nowhere;
 }
 
 std::optional<RuleVerdict> ChannelJudge::latency_verdict(const Rule& rule) const {

@@ -55,7 +55,7 @@ private:
     int expected_lag_;
     WantedReferences wanted_;
     ReferenceSource reference_;
-    DerivedLimits derived_;
+    JudgedChannel judged_;
     AlignedPass pass_;
     int window_;
     LagMeasure lag_;

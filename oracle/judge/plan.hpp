@@ -11,7 +11,7 @@
 #include <vector>
 
 #include "oracle/filters/filter.hpp"
-#include "oracle/judge/rule.hpp"
+#include "oracle/rules/rule.hpp"
 #include "stimuli/sample_format.hpp"
 #include "stimuli/stimulus.hpp"
 

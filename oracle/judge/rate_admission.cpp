@@ -3,8 +3,6 @@
 #include <algorithm>
 
 #include "oracle/judge/case_rates.hpp"
-#include "oracle/judge/response_verdict.hpp"
-#include "oracle/judge/units.hpp"
 
 namespace halflsb {
 
@@ -43,32 +41,6 @@ void check_rate(const Plan& plan, const Case& the_case, std::vector<Refusal>& re
                "discard_samples = " + std::to_string(rates.whole_cycles(the_case.start_samples)),
                the_case.discard_position);
     }
-}
-
-bool response_is_told(const Plan& plan, const Case& the_case, const Rule& rule, std::vector<Refusal>& refusals) {
-    const RateRatio ratio = CaseRates(plan, the_case).ratio();
-    if (ratio.down == 1) return true;
-    if (ratio.up > 1) {
-        refusals.push_back({rule.position,
-                            "case \"" + the_case.name + "\" asks for the response of a filter that returns " +
-                                std::to_string(ratio.up) + " samples for " + std::to_string(ratio.down) +
-                                ", in which a tone may fall on its own image",
-                            "leave the rule out; rules about error, latency, exact and unchanged hold"});
-        return false;
-    }
-    const Spectrum spectrum = measured_spectrum(plan, the_case);
-    double highest = 0.0;
-    for (const double tone : spectrum.tones) highest = std::max(highest, tone);
-    for (const Spectrum::Band& band : spectrum.bands) highest = std::max(highest, band.to_cycles_per_sample);
-    if (highest <= 0.5) return true;
-    const double returned_hz = returned_rate_hz(plan, the_case);
-    refusals.push_back({rule.position,
-                        "case \"" + the_case.name +
-                            "\" asks for the response of a decimator with a stimulus that reaches " +
-                            brief(highest * returned_hz) + " Hz, and what lies above " + brief(returned_hz / 2.0) +
-                            " Hz, half the rate of its output, comes through at other frequencies",
-                        "use a multitone, a sine or a chirp below " + brief(returned_hz / 2.0) + " Hz"});
-    return false;
 }
 
 }  // namespace halflsb

@@ -3,16 +3,13 @@
 
 #include <vector>
 
-#include "oracle/judge/admission.hpp"
+#include "oracle/judge/plan.hpp"
+#include "oracle/judge/refusal.hpp"
 
 namespace halflsb {
 
 /// A case begins where every decimator stands as after a reset, so do its references: what is sent, and what a running
 /// case discards, are whole rate cycles; all channels change the rate alike.
 void check_rate(const Plan& plan, const Case& the_case, std::vector<Refusal>& refusals);
-
-/// Behind a decimator the images of what lies above half the rate of its output cannot be told from what lies below.
-/// False: a refusal was added.
-bool response_is_told(const Plan& plan, const Case& the_case, const Rule& rule, std::vector<Refusal>& refusals);
 
 }  // namespace halflsb

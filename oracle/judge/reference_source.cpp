@@ -24,18 +24,6 @@ ReferenceBlock ReferenceBlock::after(std::size_t count) const {
             rest(exempt)};
 }
 
-WantedReferences wanted_references(const Case& the_case, int channel) {
-    WantedReferences wanted;
-    for (const Rule& rule : the_case.rules) {
-        wanted.design =
-            wanted.design || (is_driven(the_case, channel) && std::holds_alternative<ResponseRule>(rule.kind));
-        const auto* error = std::get_if<ErrorRule>(&rule.kind);
-        wanted.rails = wanted.rails || (error != nullptr && is_derived(*error));
-        wanted.twin = wanted.twin || std::holds_alternative<ExactRule>(rule.kind);
-    }
-    return wanted;
-}
-
 ReferenceSource::ReferenceSource(const Plan& plan, const Case& the_case, int channel, WantedReferences wanted)
     : signal_(plan.signal), rates_(plan, the_case) {
     const FilterChain chain = chain_of(plan, the_case, channel);

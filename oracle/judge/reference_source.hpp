@@ -37,7 +37,6 @@ struct ReferenceBlock {
 struct WantedReferences {
     bool design = false, twin = false, rails = false;
 };
-WantedReferences wanted_references(const Case& the_case, int channel);
 
 class ReferenceSource {
 public:

@@ -257,4 +257,13 @@ Neighbourhood UnchangedJudge::around_bad() const {
     return around;
 }
 
+void check(const UnchangedRule&, const Rule& asked, const Plan&, const Case& the_case, std::vector<Refusal>& refusals) {
+    if (the_case.start != Start::running) return;
+    refusals.push_back({asked.position,
+                        "case \"" + the_case.name +
+                            "\" starts running, so its first samples hang on what ran before it and cannot equal "
+                            "those of an accepted run",
+                        "start it with \"reset\" or \"flush\", or write the rule in another case"});
+}
+
 }  // namespace halflsb

@@ -15,6 +15,7 @@
 #include <vector>
 
 #include "oracle/judge/plan.hpp"
+#include "oracle/judge/refusal.hpp"
 #include "oracle/judge/verdict.hpp"
 
 namespace halflsb {
@@ -62,5 +63,9 @@ private:
     /// The first stretch that differs and reaches beyond the kept instants, from the first of it that is not kept.
     std::int64_t stretch_first_ = -1, stretch_last_ = -1;
 };
+
+/// The first samples of a running case hang on the case before, and the hash of an accepted run is over all of them.
+void check(const UnchangedRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
+           std::vector<Refusal>& refusals);
 
 }  // namespace halflsb

@@ -5,7 +5,7 @@
 #include <string>
 
 #include "oracle/judge/plan.hpp"
-#include "oracle/judge/rule.hpp"
+#include "oracle/rules/rule.hpp"
 
 namespace halflsb {
 

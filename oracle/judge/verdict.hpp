@@ -7,7 +7,7 @@
 #include <string_view>
 #include <vector>
 
-#include "oracle/judge/rule.hpp"
+#include "oracle/rules/rule.hpp"
 #include "stimuli/sample_format.hpp"
 
 namespace halflsb {

@@ -3,7 +3,7 @@
 #include <vector>
 
 #include "oracle/filters/filter.hpp"
-#include "oracle/judge/rule.hpp"
+#include "oracle/rules/rule.hpp"
 #include "runner/config/bands.hpp"
 #include "runner/config/plan_each.hpp"
 #include "runner/config/plan_tree.hpp"

@@ -8,7 +8,7 @@
 #include <string>
 #include <string_view>
 
-#include "oracle/judge/accepted_response.hpp"
+#include "oracle/rules/accepted_response.hpp"
 #include "stimuli/outcome.hpp"
 
 namespace halflsb {

@@ -3,7 +3,7 @@
 #include <string>
 #include <vector>
 
-#include "oracle/judge/rule.hpp"
+#include "oracle/rules/rule.hpp"
 #include "tests/diagnostics/plan_page.hpp"
 
 namespace halflsb::diagnostics {

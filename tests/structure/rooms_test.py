@@ -8,7 +8,7 @@ import pathlib
 import re
 import sys
 
-ORACLE = ["oracle/filters", "oracle/arithmetic", "oracle/measure", "oracle/judge"]
+ORACLE = ["oracle/filters", "oracle/arithmetic", "oracle/measure", "oracle/rules", "oracle/judge"]
 
 # room: (rooms it sees directly, outside headers it may include besides the standard library)
 ROOMS = {
@@ -16,7 +16,8 @@ ROOMS = {
     "oracle/filters": (["stimuli"], ["kissfft/"]),
     "oracle/arithmetic": (["oracle/filters"], []),
     "oracle/measure": (["stimuli"], ["kissfft/"]),
-    "oracle/judge": (["oracle/measure", "oracle/arithmetic"], []),
+    "oracle/rules": (["oracle/measure"], []),
+    "oracle/judge": (["oracle/rules", "oracle/arithmetic"], []),
     "runner/world": (ORACLE + ["stimuli"], ["spdlog/", "sha2.h", "os"]),
     "runner/link": (["runner/world", "stimuli"], ["boost/asio", "libserialport.h", "spdlog/", "os"]),
     "runner/wire": (["runner/link"], ["boost/crc.hpp", "spdlog/", "unistd.h"]),

@@ -8,7 +8,7 @@
 #include <string>
 #include <vector>
 
-#include "oracle/judge/accepted_response.hpp"
+#include "oracle/rules/accepted_response.hpp"
 #include "oracle/judge/plan.hpp"
 
 namespace halflsb::test {

@@ -14,7 +14,7 @@
 #include <string>
 #include <vector>
 
-#include "oracle/judge/rule.hpp"
+#include "oracle/rules/rule.hpp"
 #include "runner/config/plan_file.hpp"
 #include "runner/config/plan_words.hpp"
 #include "stimuli/number_text.hpp"

@@ -2,7 +2,7 @@
 
 #include <catch2/catch.hpp>
 
-#include "oracle/judge/response_verdict.hpp"
+#include "oracle/judge/response_judge.hpp"
 #include "tests/support/plans.hpp"
 
 using namespace halflsb;

@@ -7,7 +7,7 @@
 #include <catch2/catch.hpp>
 
 #include "oracle/filters/filter.hpp"
-#include "oracle/judge/rule.hpp"
+#include "oracle/rules/rule.hpp"
 #include "stimuli/stimulus.hpp"
 #include "tests/support/config_texts.hpp"
 #include "tests/support/generated_part.hpp"

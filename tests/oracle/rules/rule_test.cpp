@@ -1,4 +1,4 @@
-#include "oracle/judge/rule.hpp"
+#include "oracle/rules/rule.hpp"
 
 #include <catch2/catch.hpp>
 

@@ -6,7 +6,8 @@
 #include <vector>
 
 #include "oracle/judge/plan.hpp"
-#include "oracle/judge/verdict.hpp"
+#include "oracle/judge/refusal.hpp"
+#include "oracle/judge/rule_judge.hpp"
 #include "oracle/measure/response.hpp"
 
 namespace halflsb {
@@ -23,8 +24,10 @@ std::unique_ptr<ResponseMeasure> make_response_measure(const Plan& plan, const C
 /// has no power there or no bin falls into the band.
 std::vector<double> answerable_hz(const ResponseBand& band, const Plan& plan, const Case& the_case);
 
-/// Held against `design`, that of the channel (counted from 1). A band without a point is undecided.
-RuleVerdict judge_response(const ResponseRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
-                           int channel, const std::vector<ResponsePoint>& points);
+WantedReferences wanted_by(const ResponseRule& rule, bool is_driven);
+/// A band without a point is undecided.
+std::unique_ptr<RuleJudge> make_judge(const ResponseRule& rule, const Rule& asked, const JudgedChannel& channel);
+void check(const ResponseRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
+           std::vector<Refusal>& refusals);
 
 }  // namespace halflsb

@@ -1,4 +1,4 @@
-#include "oracle/judge/response_verdict.hpp"
+#include "oracle/judge/response_judge.hpp"
 
 #include <algorithm>
 #include <charconv>
@@ -91,14 +91,42 @@ std::vector<double> answerable_hz(const ResponseBand& band, const Plan& plan, co
     return found;
 }
 
-RuleVerdict judge_response(const ResponseRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
-                           int channel, const std::vector<ResponsePoint>& points) {
-    RuleVerdict verdict{asked, Verdict::pass, "design", {}, {}, std::nullopt};
+namespace {
+
+class ResponseJudge final : public RuleJudge {
+public:
+    ResponseJudge(const ResponseRule& rule, const Rule& asked, const JudgedChannel& channel)
+        : rule_(rule),
+          asked_(asked),
+          channel_(channel),
+          measure_(make_response_measure(channel.plan, channel.the_case)) {}
+
+    void add(const AlignedBlock& block) override {
+        error_.resize(block.values.size());
+        std::transform(block.values.begin(), block.values.end(), block.reference.design.begin(), error_.begin(),
+                       [](double measured, double ideal) { return measured - ideal; });
+        measure_->add(block.reference.stimulus, error_);
+    }
+    RuleVerdict verdict(const RailWatch* rails) const override;
+
+private:
+    const ResponseRule& rule_;
+    const Rule& asked_;
+    JudgedChannel channel_;
+    std::unique_ptr<ResponseMeasure> measure_;
+    std::vector<double> error_;
+};
+
+RuleVerdict ResponseJudge::verdict(const RailWatch*) const {
+    const Plan& plan = channel_.plan;
+    const Case& the_case = channel_.the_case;
+    const std::vector<ResponsePoint> points = measure_->value();
+    RuleVerdict verdict{asked_, Verdict::pass, "design", {}, {}, std::nullopt};
     const Spectrum spectrum = measured_spectrum(plan, the_case);
-    const FilterChain chain = chain_of(plan, the_case, channel);
+    const FilterChain chain = chain_of(plan, the_case, channel_.channel);
     const double returned_hz = returned_rate_hz(plan, the_case);
     const double of_sent = returned_per_sent(plan, the_case);
-    for (const ResponseBand& band : rule.bands) {
+    for (const ResponseBand& band : rule_.bands) {
         std::optional<Extreme> lowest, highest;
         for (const ResponsePoint& point : points) {
             const double hz = point.cycles_per_sample * returned_hz;
@@ -106,7 +134,7 @@ RuleVerdict judge_response(const ResponseRule& rule, const Rule& asked, const Pl
                 continue;
             const std::complex<double> design = response_at(chain, point.cycles_per_sample * of_sent);
             double measured_db = gain_db(design + point.difference);
-            if (rule.relative_to_design) measured_db -= gain_db(design);
+            if (rule_.relative_to_design) measured_db -= gain_db(design);
             // NaN must not hide behind a comparison that is false.
             if (!lowest || !(measured_db >= lowest->gain_db)) lowest = Extreme{measured_db, hz};
             if (!highest || !(measured_db <= highest->gain_db)) highest = Extreme{measured_db, hz};
@@ -123,6 +151,15 @@ RuleVerdict judge_response(const ResponseRule& rule, const Rule& asked, const Pl
         verdict.verdict = Verdict::fail;
     }
     return verdict;
+}
+
+}  // namespace
+
+WantedReferences wanted_by(const ResponseRule&, bool is_driven) { return {.design = is_driven}; }
+
+std::unique_ptr<RuleJudge> make_judge(const ResponseRule& rule, const Rule& asked, const JudgedChannel& channel) {
+    if (!channel.is_driven()) return nullptr;
+    return std::make_unique<ResponseJudge>(rule, asked, channel);
 }
 
 }  // namespace halflsb

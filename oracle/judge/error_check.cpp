@@ -1,0 +1,66 @@
+#include <algorithm>
+#include <cmath>
+#include <utility>
+
+#include "oracle/judge/error_judge.hpp"
+#include "oracle/judge/leftover.hpp"
+#include "oracle/judge/units.hpp"
+
+namespace halflsb {
+namespace {
+
+/// Why no bound covers this arithmetic. {problem, remedy}
+std::optional<std::pair<std::string, std::string>> not_covered(const Signal& signal, const DescribedChain& chain) {
+    int exponent = 0;
+    if (std::frexp(signal.output_per_input, &exponent) != 0.5) {
+        return std::pair("output_per_input is no power of two, and nothing says how it is rounded",
+                         "give the scale as a stage of its own, or a number for the limit");
+    }
+    for (std::size_t i = 0; i < chain.stages.size(); ++i) {
+        const DescribedStage& stage = chain.stages[i];
+        if (stage.stage.initial == Initial::zeros) continue;
+        // Whole numbers that start as if the first sample had gone on for ever err as if it had.
+        const bool is_finite = samples_to_forget(stage).has_value() && stage.number == NumberKind::integer;
+        if (stage.stage.initial == Initial::first_sample && is_finite) continue;
+        return std::pair(
+            "the state that initial puts into stage " + std::to_string(i + 1) + " is rounded in a way that nobody said",
+            "leave initial out, or give a number for the limit");
+    }
+    return std::nullopt;
+}
+
+}  // namespace
+
+void check(const ErrorRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
+           std::vector<Refusal>& refusals) {
+    if (!is_derived(rule)) return;
+    const double widest = full_scale_value(plan.signal.output);
+    for (int channel = 1; channel <= plan.signal.channels; ++channel) {
+        const auto chain = described_channel(plan, the_case, channel);
+        if (!chain) return;  // the reader has refused it
+        if (const auto why = not_covered(plan.signal, *chain)) {
+            refusals.push_back({asked.position,
+                                "no limit follows from the arithmetic in case \"" + the_case.name + "\": " + why->first,
+                                why->second});
+            return;
+        }
+        const auto limits = derived_limits(plan, the_case, channel);
+        if (!limits) return;
+        double wanted = 0.0;
+        if (rule.largest && rule.largest->is_derived) wanted = limits->error.largest();
+        if (rule.rms && rule.rms->is_derived) wanted = std::max(wanted, limits->worst_rms);
+        if (rule.bias && rule.bias->is_derived) wanted = std::max(wanted, limits->worst_bias.largest());
+        if (wanted <= widest) continue;
+        const Limit::In in = natural_unit(plan.signal);
+        const std::string size = std::isfinite(wanted) ? "is " + brief(wanted / worth_of(in, plan.signal)) + " " +
+                                                             unit_name(in, plan.signal) + ", wider than full scale"
+                                                       : "has no end";
+        refusals.push_back({asked.position,
+                            "the limit that follows from the arithmetic in case \"" + the_case.name + "\" " + size,
+                            "say more of the arithmetic (halflsb predict shows what it comes from), give a number, or "
+                            "use kind = \"exact\""});
+        return;
+    }
+}
+
+}  // namespace halflsb

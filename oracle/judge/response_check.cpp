@@ -1,0 +1,96 @@
+#include <algorithm>
+#include <string>
+
+#include "oracle/judge/case_rates.hpp"
+#include "oracle/judge/response_judge.hpp"
+#include "oracle/judge/units.hpp"
+
+namespace halflsb {
+namespace {
+
+/// Behind a decimator the images of what lies above half the rate of its output cannot be told from what lies below.
+/// False: a refusal was added.
+bool response_is_told(const Plan& plan, const Case& the_case, const Rule& asked, std::vector<Refusal>& refusals) {
+    const RateRatio ratio = CaseRates(plan, the_case).ratio();
+    if (ratio.down == 1) return true;
+    if (ratio.up > 1) {
+        refusals.push_back({asked.position,
+                            "case \"" + the_case.name + "\" asks for the response of a filter that returns " +
+                                std::to_string(ratio.up) + " samples for " + std::to_string(ratio.down) +
+                                ", in which a tone may fall on its own image",
+                            "leave the rule out; rules about error, latency, exact and unchanged hold"});
+        return false;
+    }
+    const Spectrum spectrum = measured_spectrum(plan, the_case);
+    double highest = 0.0;
+    for (const double tone : spectrum.tones) highest = std::max(highest, tone);
+    for (const Spectrum::Band& band : spectrum.bands) highest = std::max(highest, band.to_cycles_per_sample);
+    if (highest <= 0.5) return true;
+    const double returned_hz = returned_rate_hz(plan, the_case);
+    refusals.push_back({asked.position,
+                        "case \"" + the_case.name +
+                            "\" asks for the response of a decimator with a stimulus that reaches " +
+                            brief(highest * returned_hz) + " Hz, and what lies above " + brief(returned_hz / 2.0) +
+                            " Hz, half the rate of its output, comes through at other frequencies",
+                        "use a multitone, a sine or a chirp below " + brief(returned_hz / 2.0) + " Hz"});
+    return false;
+}
+
+}  // namespace
+
+void check(const ResponseRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
+           std::vector<Refusal>& refusals) {
+    for (int channel = 1; channel <= plan.signal.channels; ++channel) {
+        if (!is_driven(the_case, channel) || is_linear(chain_of(plan, the_case, channel))) continue;
+        refusals.push_back({asked.position,
+                            "case \"" + the_case.name +
+                                "\" asks for the response of a filter with a median in it, which is not linear and "
+                                "has none",
+                            "leave the rule out; rules about error, latency and unchanged hold"});
+        return;
+    }
+    if (!response_is_told(plan, the_case, asked, refusals)) return;
+    const Spectrum spectrum = measured_spectrum(plan, the_case);
+    const std::string noise = "use noise or a chirp over that band";
+    if (spectrum.tones.empty() && spectrum.bands.empty()) {
+        refusals.push_back(
+            {asked.position,
+             "case \"" + the_case.name + "\" cannot answer a response rule with shape = \"" + the_case.shape + "\"",
+             "use noise, a chirp, a sine or a multitone"});
+        return;
+    }
+    const std::int64_t length = judged_samples(plan, the_case);
+    if (!tones_resolved(spectrum.tones, length)) {
+        refusals.push_back(
+            {asked.position,
+             "case \"" + the_case.name + "\" is too short to keep its tones apart: " + std::to_string(length) +
+                 " samples",
+             "tones must be 4 cycles apart over the record, and as far from 0 and Nyquist: lengthen it"});
+        return;
+    }
+    constexpr std::int64_t shortest_samples = 64;
+    if (spectrum.tones.empty() && length < shortest_samples) {
+        refusals.push_back(
+            {asked.position,
+             "case \"" + the_case.name + "\" is too short for a response: " + std::to_string(length) + " samples",
+             "give it at least " + std::to_string(shortest_samples) + " samples"});
+        return;
+    }
+    for (const ResponseBand& band : rule.bands) {
+        if (!answerable_hz(band, plan, the_case).empty()) continue;
+        const std::string band_text = brief(band.from_hz) + " to " + brief(band.to_hz) + " Hz";
+        std::string remedy = noise;
+        if (spectrum.tones.empty()) {
+            const double spacing_hz =
+                returned_rate_hz(plan, the_case) / static_cast<double>(response_segment_for(length));
+            remedy += "; its bins are " + brief(spacing_hz) + " Hz apart, a longer record brings them closer";
+        } else {
+            remedy += ", or a multitone with a tone in it";
+        }
+        refusals.push_back({asked.position,
+                            "the stimulus of case \"" + the_case.name + "\" says nothing about the band " + band_text,
+                            remedy});
+    }
+}
+
+}  // namespace halflsb

@@ -1,0 +1,40 @@
+#include "oracle/judge/rule_kinds.hpp"
+
+#include "oracle/judge/error_judge.hpp"
+#include "oracle/judge/exact_judge.hpp"
+#include "oracle/judge/latency_check.hpp"
+#include "oracle/judge/response_judge.hpp"
+#include "oracle/judge/unchanged_judge.hpp"
+
+namespace halflsb {
+namespace {
+
+// Judged elsewhere.
+WantedReferences wanted_by(const LatencyRule&, bool) { return {}; }
+WantedReferences wanted_by(const UnchangedRule&, bool) { return {}; }
+std::unique_ptr<RuleJudge> make_judge(const LatencyRule&, const Rule&, const JudgedChannel&) { return nullptr; }
+std::unique_ptr<RuleJudge> make_judge(const UnchangedRule&, const Rule&, const JudgedChannel&) { return nullptr; }
+
+}  // namespace
+
+WantedReferences wanted_references(const Case& the_case, int channel) {
+    WantedReferences wanted;
+    for (const Rule& rule : the_case.rules) {
+        const WantedReferences more =
+            std::visit([&](const auto& kind) { return wanted_by(kind, is_driven(the_case, channel)); }, rule.kind);
+        wanted.design = wanted.design || more.design;
+        wanted.twin = wanted.twin || more.twin;
+        wanted.rails = wanted.rails || more.rails;
+    }
+    return wanted;
+}
+
+std::unique_ptr<RuleJudge> make_judge(const Rule& rule, const JudgedChannel& channel) {
+    return std::visit([&](const auto& kind) { return make_judge(kind, rule, channel); }, rule.kind);
+}
+
+void check(const Rule& rule, const Plan& plan, const Case& the_case, std::vector<Refusal>& refusals) {
+    std::visit([&](const auto& kind) { check(kind, rule, plan, the_case, refusals); }, rule.kind);
+}
+
+}  // namespace halflsb

@@ -1,0 +1,20 @@
+// The rule latency: whole samples of delay.
+#pragma once
+
+#include "oracle/rules/rule_words.hpp"
+#include "stimuli/outcome.hpp"
+#include "stimuli/parameter.hpp"
+
+namespace halflsb {
+
+/// Whole-sample delay of the response behind the reference, exactly this many.
+struct LatencyRule {
+    int expected_samples = 0;  ///< within the lag window
+    bool implicit = false;     ///< the one each case has without asking
+};
+
+const Recipe& latency_recipe();
+/// An Error's place is the name of the parameter to blame.
+Outcome<LatencyRule> make_latency_rule(const ParameterValues& values, const RuleContext& context);
+
+}  // namespace halflsb

@@ -1,0 +1,32 @@
+// The rules a plan can ask for. Closed set; each kind's words, units and ranges stand in its own file, the recipes of
+// all in rule_recipes() and nowhere else.
+#pragma once
+
+#include <string_view>
+#include <variant>
+#include <vector>
+
+#include "oracle/rules/error_rule.hpp"
+#include "oracle/rules/exact_rule.hpp"
+#include "oracle/rules/latency_rule.hpp"
+#include "oracle/rules/plan_position.hpp"
+#include "oracle/rules/response_rule.hpp"
+#include "oracle/rules/rule_words.hpp"
+#include "oracle/rules/unchanged_rule.hpp"
+
+namespace halflsb {
+
+struct Rule {
+    std::variant<ErrorRule, LatencyRule, ResponseRule, UnchangedRule, ExactRule> kind;
+    PlanPosition position;
+};
+
+/// In the order of the variant.
+const std::vector<Recipe>& rule_recipes();
+std::string_view kind_name(const Rule& rule);
+
+/// An Error's place is the name of the parameter to blame. Bands arrive as rows of
+/// {from_hz, to_hz, min_db or -inf, max_db or +inf}.
+Outcome<Rule> make_rule(std::string_view kind, const ParameterValues& values, const RuleContext& context);
+
+}  // namespace halflsb
