@@ -174,7 +174,7 @@ Outcome<CaseResult> judge_capture(const RecordedRun& record, const Plan& plan, c
     const Case& the_case = plan.cases[match.case_index];
     CaseResult result = *match.recorded;
     result.number = match.case_index + 1;
-    result.returned_per_sent = returned_rate_hz(plan, the_case) / rate_hz_of(plan, the_case);
+    result.returned_per_sent = returned_per_sent(plan, the_case);
     if (result.verdict == CaseVerdict::invalid) return result;
     const std::string shown = record.path_of(result.capture_file);
     const auto path = path_inside(files, record.folder, result.capture_file);

@@ -153,7 +153,7 @@ CaseResult facts_of(const CaseStage& stage) {
     result.start_samples = stage.the_case.start_samples;
     result.settings = stage.the_case.settings;
     result.rate_hz = stage.the_case.rate_hz;
-    result.returned_per_sent = returned_rate_hz(stage.plan, stage.the_case) / rate_hz_of(stage.plan, stage.the_case);
+    result.returned_per_sent = returned_per_sent(stage.plan, stage.the_case);
     return result;
 }
 

@@ -111,7 +111,7 @@ private:
     PathSums sums_;
 };
 
-/// No one impulse response: what is known is how large the output of something within -1 .. 1 can get, whenever it came.
+/// No one impulse response: known is how large the output of something within -1 .. 1 can get, whenever it came.
 PathSums sums_without_response(const FilterChain& path, std::size_t lags) {
     PathSums known;
     known.is_one_response = false;

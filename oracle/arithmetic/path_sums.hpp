@@ -24,9 +24,9 @@ struct PathSums {
     /// -1 .. 1 can put into them. 0 when not asked for.
     double past_positive = 0.0, past_negative = 0.0, past_rms = 0.0;
 
-    /// False around a median and where the rate changes: then `largest` is the largest output, of either sign, for inputs
-    /// within -1 .. 1, positive and negative are those of the output phase that has the most of each, and the others no
-    /// smaller than what they stand for.
+    /// False around a median and where the rate changes: then `largest` is the largest output, of either sign, for
+    /// inputs within -1 .. 1, positive and negative are those of the output phase that has the most of each, and the
+    /// others no smaller than what they stand for.
     bool is_one_response = true;
     /// False around a median: positive and -negative are the largest output too.
     bool has_signs = true;

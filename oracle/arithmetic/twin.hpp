@@ -40,8 +40,9 @@ public:
     virtual std::vector<NodeReach> reaches() const = 0;
 };
 
-/// nullptr where the description is incomplete (`missing`), and of what no bits are defined for: a CIC in float32, a sum that nobody limited and that can need more than 126 bits (a wide
-/// accumulator of products of two words of 64), a CIC whose registers need more than 64.
+/// nullptr where the description is incomplete (`missing`), and of what no bits are defined for: a CIC in float32, a sum
+/// that nobody limited and that can need more than 126 bits (a wide accumulator of products of two words of 64), a CIC
+/// whose registers need more than 64.
 std::unique_ptr<Twin> make_twin(const DescribedChain& chain);
 
 }  // namespace halflsb

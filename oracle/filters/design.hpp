@@ -18,37 +18,44 @@ namespace halflsb {
 /// y[n] = (x[n] + ... + x[n-points+1]) / points
 struct MovingAverage {
     int points = 1;
+    bool operator==(const MovingAverage&) const = default;
 };
 
 /// y[n] = sum taps[k] x[n-k]
 struct Fir {
     std::vector<double> taps;
+    bool operator==(const Fir&) const = default;
 };
 
 /// H(z) = (b0 + b1 z^-1 + b2 z^-2) / (1 + a1 z^-1 + a2 z^-2)
 struct BiquadSection {
     double b0 = 1.0, b1 = 0.0, b2 = 0.0, a1 = 0.0, a2 = 0.0;
+    bool operator==(const BiquadSection&) const = default;
 };
 
 /// Sections in the order in which the signal passes them.
 struct BiquadCascade {
     std::vector<BiquadSection> sections;
+    bool operator==(const BiquadCascade&) const = default;
 };
 
 /// y[n] = direct x[n] + forward x[n-delay_samples] - feedback y[n-delay_samples]
 struct Comb {
     int delay_samples = 1;
     double direct = 1.0, forward = 0.0, feedback = 0.0;
+    bool operator==(const Comb&) const = default;
 };
 
 /// y[n] = b[0] x[n] + ... - a[1] y[n-1] - a[2] y[n-2] ...; a[0] is 1, both lists have 1 .. 33 numbers.
 struct Recursion {
     std::vector<double> b, a;
+    bool operator==(const Recursion&) const = default;
 };
 
 /// The middle one of the last `points` samples by size; the mean of the middle two where points is even. Not linear.
 struct Median {
     int points = 1;
+    bool operator==(const Median&) const = default;
 };
 
 /// N = order moving sums of R M samples (R = factor, M = delay_samples), then one output for R inputs: Hogenauer
@@ -58,6 +65,7 @@ struct CicDecimator {
     int order = 1, factor = 2, delay_samples = 1;
     std::optional<int> shift_bits = {};
     int phase_samples = 0;
+    bool operator==(const CicDecimator&) const = default;
 };
 
 /// R - 1 zeros behind each input, then N moving sums of R M samples. The gain R^(N-1) M^N at zero frequency is divided
@@ -65,6 +73,7 @@ struct CicDecimator {
 struct CicInterpolator {
     int order = 1, factor = 2, delay_samples = 1;
     std::optional<int> shift_bits = {};
+    bool operator==(const CicInterpolator&) const = default;
 };
 
 /// y[m] = sum taps[k] x[m factor + phase_samples - k]. Fewer taps than factor are taken: one tap of 1 keeps each
@@ -73,6 +82,7 @@ struct FirDecimator {
     std::vector<double> taps;
     int factor = 2;
     int phase_samples = 0;
+    bool operator==(const FirDecimator&) const = default;
 };
 
 /// y[m] = sum taps[k] u[m-k], u the input with factor - 1 zeros behind each sample. The taps are used as they are: the
@@ -80,6 +90,7 @@ struct FirDecimator {
 struct FirInterpolator {
     std::vector<double> taps;
     int factor = 2;
+    bool operator==(const FirInterpolator&) const = default;
 };
 
 using FilterDesign = std::variant<MovingAverage, Fir, BiquadCascade, Comb, Recursion, Median, CicDecimator,

@@ -35,6 +35,8 @@ struct FilterStage {
     std::string kind = {};           ///< as the plan calls it: "one-pole" is a BiquadCascade of one section
     std::vector<int> channels = {};  ///< counted from 1; empty: every channel passes this stage
     Initial initial = Initial::zeros;
+
+    bool operator==(const FilterStage&) const = default;
 };
 
 /// Stages in the order in which the signal passes them.

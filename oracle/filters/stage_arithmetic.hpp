@@ -74,6 +74,8 @@ struct StageArithmetic {
     std::optional<Division> division = {};
     std::optional<bool> fused_multiply_add = {};
     std::optional<Summation> summation = {};
+
+    bool operator==(const StageArithmetic&) const = default;
 };
 
 /// The words, for the reader, its messages and the reference in docs.

@@ -20,10 +20,7 @@ namespace {
 /// Noise for a remedy: long enough once the discard of a running case is over.
 std::int64_t noise_samples(const Plan& plan, const Case& the_case) {
     const std::int64_t discarded = the_case.start == Start::running ? the_case.start_samples : 0;
-    const CaseRates rates(plan, the_case);
-    // Enough on the slower side.
-    const std::int64_t cycles = (4096 + rates.cycle().outputs - 1) / rates.cycle().outputs;
-    return std::max(cycles, rates.cycles_within(4096)) * rates.cycle().inputs + discarded;
+    return CaseRates(plan, the_case).sent_for(4096) + discarded;
 }
 
 /// White noise has no second lag that looks like the first: would it do for this filter?
@@ -49,10 +46,9 @@ void check_latency(const Plan& plan, const Case& the_case, const Rule& rule, std
                           (std::abs(expected) == 1 ? " sample" : " samples") + ": lags of -" + std::to_string(window) +
                           " to " + std::to_string(window) + " can be told from " +
                           std::to_string(judged_samples(plan, the_case)) + " samples";
-        const CaseRates rates(plan, the_case);
         const std::int64_t returned = first_judged_sample(plan, the_case) + 2 * std::abs(expected) + 1;
-        const std::int64_t cycles = (returned + rates.cycle().outputs - 1) / rates.cycle().outputs;
-        refusal.remedy = "give it at least " + std::to_string(cycles * rates.cycle().inputs) + " samples";
+        refusal.remedy =
+            "give it at least " + std::to_string(CaseRates(plan, the_case).sent_for(returned)) + " samples";
         refusals.push_back(std::move(refusal));
         return;
     }

@@ -22,7 +22,6 @@ CaseJudge::CaseJudge(const Plan& plan, const Case& the_case)
     : plan_(plan),
       case_(the_case),
       rates_(plan, the_case),
-      block_sent_(rates_.cycles_within(judge_block_samples) * rates_.cycle().inputs),
       block_returned_(rates_.cycles_within(judge_block_samples) * rates_.cycle().outputs),
       sent_(plan, the_case) {
     if (!plan.filter_is_unknown) {
@@ -40,10 +39,10 @@ void CaseJudge::add(std::span<const Code> response) {
     assert(response.size() % channels == 0);
     const std::size_t cycle = static_cast<std::size_t>(rates_.cycle().outputs) * channels;
     if (!waiting_.empty()) {
-        const std::size_t missing = std::min((cycle - waiting_.size() % cycle) % cycle, response.size());
+        const std::size_t missing = std::min(cycle - waiting_.size(), response.size());
         waiting_.insert(waiting_.end(), response.begin(), response.begin() + static_cast<std::ptrdiff_t>(missing));
         response = response.subspan(missing);
-        if (waiting_.size() % cycle != 0) return;
+        if (waiting_.size() < cycle) return;
         add_cycles(waiting_);
         waiting_.clear();
     }
@@ -58,7 +57,7 @@ void CaseJudge::add_cycles(std::span<const Code> response) {
         const auto part =
             response.first(std::min(response.size(), static_cast<std::size_t>(block_returned_) * channels));
         const auto returned = static_cast<std::int64_t>(part.size() / channels);
-        const std::int64_t sent = returned / rates_.cycle().outputs * rates_.cycle().inputs;
+        const std::int64_t sent = rates_.sent_for(returned);
         sent_.take(sent_samples_, static_cast<std::size_t>(sent));
         for (ChannelJudge& judge : channels_) {
             judge.add(sent_.of_channel(judge.channel()),
@@ -76,7 +75,7 @@ Outcome<void> CaseJudge::go_through_again(const ResponseReplay& replay) {
     std::vector<Code> codes;
     for (std::int64_t first = 0, first_sent = 0; first < samples_;) {
         const std::int64_t count = std::min(block_returned_, samples_ - first);
-        const std::int64_t sent = count / rates_.cycle().outputs * rates_.cycle().inputs;
+        const std::int64_t sent = rates_.sent_for(count);
         codes.resize(static_cast<std::size_t>(count) * channels);
         if (auto read = replay(first, codes); !read) return read.error();
         sent_.take(first_sent, static_cast<std::size_t>(sent));

@@ -45,7 +45,7 @@ private:
     const Plan& plan_;
     const Case& case_;
     CaseRates rates_;
-    std::int64_t block_sent_, block_returned_;  ///< most instants that are looked at together, whole cycles
+    std::int64_t block_returned_;  ///< most instants of the response that are looked at together, whole cycles
     SentBlock sent_;
     std::vector<ChannelJudge> channels_;  ///< none when the filter is unknown: there is no reference
     std::vector<UnchangedJudge> unchanged_;

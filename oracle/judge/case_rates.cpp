@@ -37,6 +37,14 @@ std::int64_t CaseRates::newest_sent(std::int64_t returned_index) const {
     return cycles * cycle_.inputs + low;
 }
 
+std::int64_t CaseRates::sent_for(std::int64_t returned) const {
+    return (returned + cycle_.outputs - 1) / cycle_.outputs * cycle_.inputs;
+}
+
+std::int64_t CaseRates::whole_cycles(std::int64_t sent) const {
+    return std::max<std::int64_t>((sent + cycle_.inputs - 1) / cycle_.inputs, 1) * cycle_.inputs;
+}
+
 std::int64_t CaseRates::cycles_within(std::int64_t samples) const {
     return std::max<std::int64_t>(samples / std::max(cycle_.inputs, cycle_.outputs), 1);
 }
@@ -46,12 +54,8 @@ bool same_rates(const Plan& plan, const Case& the_case) {
     for (int channel = 2; channel <= plan.signal.channels; ++channel) {
         const FilterChain other = rate_stages(plan, the_case, channel);
         const auto same_way = [](const FilterStage& a, const FilterStage& b) {
-            // Decimators of one factor may take their output at different inputs of the group.
-            const std::int64_t factor = rate_ratio(a.design).down;
-            for (std::int64_t inputs = 1; inputs <= factor; ++inputs) {
-                if (outputs_after({a}, inputs) != outputs_after({b}, inputs)) return false;
-            }
-            return rate_ratio(a.design) == rate_ratio(b.design);
+            return rate_ratio(a.design) == rate_ratio(b.design) &&
+                   phase_samples_of(a.design) == phase_samples_of(b.design);
         };
         if (!std::equal(first.begin(), first.end(), other.begin(), other.end(), same_way)) return false;
     }
@@ -68,6 +72,11 @@ std::int64_t judged_samples(const Plan& plan, const Case& the_case) {
 
 std::int64_t returned_samples(const Plan& plan, const Case& the_case) {
     return CaseRates(plan, the_case).returned(the_case.stimulus->length_samples());
+}
+
+double returned_per_sent(const Plan& plan, const Case& the_case) {
+    const RateRatio ratio = CaseRates(plan, the_case).ratio();
+    return static_cast<double>(ratio.up) / ratio.down;
 }
 
 double returned_rate_hz(const Plan& plan, const Case& the_case) {

@@ -32,6 +32,10 @@ public:
     std::int64_t returned(std::int64_t sent) const { return outputs_after(stages_, sent); }
     /// The last one sent when that one was returned, by index.
     std::int64_t newest_sent(std::int64_t returned_index) const;
+    /// How many to send, in whole cycles, for at least so many back.
+    std::int64_t sent_for(std::int64_t returned) const;
+    /// `sent` rounded up to whole cycles, at least one.
+    std::int64_t whole_cycles(std::int64_t sent) const;
     /// As many cycles as keep both sides within `samples`, at least one.
     std::int64_t cycles_within(std::int64_t samples) const;
 
@@ -49,6 +53,8 @@ std::int64_t first_judged_sample(const Plan& plan, const Case& the_case);
 std::int64_t judged_samples(const Plan& plan, const Case& the_case);
 /// How many are returned in all.
 std::int64_t returned_samples(const Plan& plan, const Case& the_case);
+/// Rate of the response over that of the stimulus.
+double returned_per_sent(const Plan& plan, const Case& the_case);
 /// Instants a second of the response.
 double returned_rate_hz(const Plan& plan, const Case& the_case);
 

@@ -31,9 +31,8 @@ LatencyEvidence evidence_of(const Plan& plan, const Case& the_case, int channel)
     LatencyEvidence evidence;
     evidence.channel = plan.signal.channels == 1 ? 0 : channel;
     const CaseRates rates(plan, the_case);
-    const std::int64_t cycle = rates.cycle().inputs;
     const std::int64_t most = latency_evidence_samples(chain_of(plan, the_case, channel));
-    evidence.samples = std::min(the_case.stimulus->length_samples(), (most + cycle - 1) / cycle * cycle);
+    evidence.samples = std::min(the_case.stimulus->length_samples(), rates.whole_cycles(most));
     evidence.window = lag_window_for(rates.returned(evidence.samples) - first_judged_sample(plan, the_case));
     evidence.expected_is_outside = std::abs(expected_lag_of(the_case)) > lag_window_of(plan, the_case);
     const double sigma = latency_sigma(the_case, plan.signal, asked_limits(plan, the_case, channel));
@@ -41,7 +40,7 @@ LatencyEvidence evidence_of(const Plan& plan, const Case& the_case, int channel)
     ReferenceSource reference(plan, the_case, channel, {});
     SentBlock sent(plan, the_case);
     bool has_enough = false;
-    const std::int64_t block = rates.cycles_within(judge_block_samples) * cycle;
+    const std::int64_t block = rates.cycles_within(judge_block_samples) * rates.cycle().inputs;
     for (std::int64_t first = 0; first < evidence.samples && !has_enough;) {
         const auto count = std::min(block, evidence.samples - first);
         sent.take(first, static_cast<std::size_t>(count));

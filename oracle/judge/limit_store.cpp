@@ -3,7 +3,6 @@
 #include <algorithm>
 #include <cmath>
 
-#include "oracle/arithmetic/same_chain.hpp"
 #include "oracle/judge/case_rates.hpp"
 
 namespace halflsb {
@@ -44,7 +43,7 @@ double LimitStore::rms_of_input(const Plan& plan, const Case& the_case) {
 LimitStore::KnownChain& LimitStore::known_chain(FilterChain chain, const Signal& signal) {
     for (const auto& known : chains_) {
         if (known->input == signal.input && known->output == signal.output &&
-            known->output_per_input == signal.output_per_input && same_chain(known->chain, chain))
+            known->output_per_input == signal.output_per_input && known->chain == chain)
             return *known;
     }
     if (chains_.size() >= most_chains) chains_.erase(chains_.begin());

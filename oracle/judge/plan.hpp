@@ -55,8 +55,8 @@ struct Case {
     std::shared_ptr<const Stimulus> stimulus;
     std::vector<Rule> rules;  ///< those of the case, those for every case, and a latency rule in any event
     PlanPosition position;
-    PlanPosition length_position = {};   ///< of the stimulus' length_samples, or of the stimulus where it has none
-    PlanPosition discard_position = {};  ///< of discard_samples
+    PlanPosition length_position = {};     ///< of the stimulus' length_samples, or of the stimulus where it has none
+    PlanPosition discard_position = {};    ///< of discard_samples
     std::vector<std::string> labels = {};  ///< --label selects by them
     Start start = Start::reset;
     /// Zeros sent before the stimulus (flush), or leading samples that no rule looks at (running).

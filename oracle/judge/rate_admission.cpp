@@ -29,21 +29,19 @@ void check_rate(const Plan& plan, const Case& the_case, std::vector<Refusal>& re
                "let the board return a signal from before its last change of the rate", the_case.position);
         return;
     }
-    const auto multiple_of = [&](std::int64_t samples) {
-        return std::max<std::int64_t>((samples + cycle - 1) / cycle, 1) * cycle;
-    };
     const std::int64_t length = the_case.stimulus->length_samples();
     if (length % cycle != 0) {
         refuse(" sends " + std::to_string(length) + " samples, and its filter, which returns " +
                    std::to_string(rates.cycle().outputs) + " for " + std::to_string(cycle) + ", needs a multiple of " +
                    std::to_string(cycle),
-               "send " + std::to_string(multiple_of(length)) + " samples", the_case.length_position);
+               "send " + std::to_string(rates.whole_cycles(length)) + " samples", the_case.length_position);
     }
     if (the_case.start == Start::running && the_case.start_samples % cycle != 0) {
         refuse(" discards " + std::to_string(the_case.start_samples) + " samples, and its filter, which returns " +
                    std::to_string(rates.cycle().outputs) + " for " + std::to_string(cycle) + ", needs a multiple of " +
                    std::to_string(cycle),
-               "discard_samples = " + std::to_string(multiple_of(the_case.start_samples)), the_case.discard_position);
+               "discard_samples = " + std::to_string(rates.whole_cycles(the_case.start_samples)),
+               the_case.discard_position);
     }
 }
 

@@ -57,13 +57,12 @@ JudgedFigure held(const Extreme& extreme, double limit_db, bool at_least, const 
 Spectrum measured_spectrum(const Plan& plan, const Case& the_case) {
     Spectrum spectrum = the_case.stimulus->spectrum();
     if (!spectrum.bands.empty()) spectrum.tones.clear();
-    const RateRatio ratio = CaseRates(plan, the_case).ratio();
-    if (ratio == RateRatio{}) return spectrum;
-    const double returned_over_sent = static_cast<double>(ratio.up) / ratio.down;
-    for (double& tone : spectrum.tones) tone /= returned_over_sent;
+    const double of_sent = returned_per_sent(plan, the_case);
+    if (of_sent == 1.0) return spectrum;
+    for (double& tone : spectrum.tones) tone /= of_sent;
     for (Spectrum::Band& band : spectrum.bands) {
-        band.from_cycles_per_sample /= returned_over_sent;
-        band.to_cycles_per_sample /= returned_over_sent;
+        band.from_cycles_per_sample /= of_sent;
+        band.to_cycles_per_sample /= of_sent;
     }
     return spectrum;
 }
@@ -97,15 +96,15 @@ RuleVerdict judge_response(const ResponseRule& rule, const Rule& asked, const Pl
     RuleVerdict verdict{asked, Verdict::pass, "design", {}, {}, std::nullopt};
     const Spectrum spectrum = measured_spectrum(plan, the_case);
     const FilterChain chain = chain_of(plan, the_case, channel);
-    const double sent_hz = rate_hz_of(plan, the_case), returned_hz = returned_rate_hz(plan, the_case);
-    const double returned_over_sent = returned_hz / sent_hz;
+    const double returned_hz = returned_rate_hz(plan, the_case);
+    const double of_sent = returned_per_sent(plan, the_case);
     for (const ResponseBand& band : rule.bands) {
         std::optional<Extreme> lowest, highest;
         for (const ResponsePoint& point : points) {
             const double hz = point.cycles_per_sample * returned_hz;
             if (!within(hz, band) || (spectrum.tones.empty() && !has_power(spectrum, point.cycles_per_sample)))
                 continue;
-            const std::complex<double> design = response_at(chain, point.cycles_per_sample * returned_over_sent);
+            const std::complex<double> design = response_at(chain, point.cycles_per_sample * of_sent);
             double measured_db = gain_db(design + point.difference);
             if (rule.relative_to_design) measured_db -= gain_db(design);
             // NaN must not hide behind a comparison that is false.

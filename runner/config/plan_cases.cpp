@@ -170,7 +170,6 @@ public:
         Case& the_case = read_.the_case;
         the_case.rate_hz = values.number(recipe, "rate_hz");
         the_case.labels = read_labels(reader_);
-        reader_.entry(each_word);
         // Known before its inner tables are read, so that a key of the case under their headers is told from
         // an unknown one.
         reader_.entry(each_word);

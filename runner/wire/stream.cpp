@@ -142,11 +142,10 @@ Outcome<void> FramedSession::take_response(message::BytesView body) {
     const StreamWindow::Frame& frame = window_.oldest();
     if (frame.type != message::Type::samples)
         return broken_answer("the board answered " + oldest_name() + " with RESPONSE instead of DONE");
-    const std::size_t words = size_of(frame.returned) * size_of(filter_.channels_out);
     const std::size_t instant_bytes = size_of(filter_.channels_out) * filter_.output.word_bytes();
-    if (frame.returned != frame.samples && response->words.size() % instant_bytes == 0 &&
-        response->words.size() != words * filter_.output.word_bytes()) {
-        const std::size_t came = response->words.size() / instant_bytes;
+    const std::size_t came_bytes = response->words.size(), right_bytes = size_of(frame.returned) * instant_bytes;
+    if (frame.returned != frame.samples && came_bytes % instant_bytes == 0 && came_bytes != right_bytes) {
+        const std::size_t came = came_bytes / instant_bytes;
         return fail(Error{ErrorKind::bench, link_.name(),
                           "the board answered " + oldest_name() + " with " + std::to_string(came) +
                               (came == 1 ? " sample" : " samples") + "; the plan's filter returns " +
@@ -154,12 +153,11 @@ Outcome<void> FramedSession::take_response(message::BytesView body) {
                           "say in the plan which input of each group a decimator returns with (phase_samples), or "
                           "correct the firmware: it answers each block with what came of it, docs/wire.md 3"});
     }
-    if (response->words.size() != words * filter_.output.word_bytes())
-        return broken_answer("the board answered " + oldest_name() + " with " + std::to_string(response->words.size()) +
-                             " bytes of samples; " + std::to_string(words * filter_.output.word_bytes()) +
-                             " are right");
+    if (came_bytes != right_bytes)
+        return broken_answer("the board answered " + oldest_name() + " with " + std::to_string(came_bytes) +
+                             " bytes of samples; " + std::to_string(right_bytes) + " are right");
     const std::size_t before = ready_.samples.size();
-    ready_.samples.resize(before + words);
+    ready_.samples.resize(before + size_of(frame.returned) * size_of(filter_.channels_out));
     from_wire_bytes(filter_.output, response->words, std::span(ready_.samples).subspan(before));
     ready_.ticks_total += response->ticks_total;
     ready_.ticks_largest = std::max(ready_.ticks_largest, response->ticks_largest);

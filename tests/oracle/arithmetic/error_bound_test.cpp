@@ -188,6 +188,36 @@ TEST_CASE("error bound: the worked round-off noise of a one-pole and of a pair o
     CHECK_THAT(two.terms[0].l1, WithinRel(8.964211125722, 1e-6));
 }
 
+namespace {
+
+struct Moments {
+    double mean = 0.0, rms = 0.0;
+};
+
+/// Of white noise over the whole range of the input's words.
+double rms_of_noise(const DescribedChain& chain) {
+    const int fraction_bits = chain.stages.front().in.word.fraction_bits;
+    return std::ldexp(static_cast<double>(top_of(chain)), -fraction_bits) / 1.7321;
+}
+
+/// Of the errors of the last `samples` of 3000.
+Moments errors_of_noise(const DescribedChain& chain, Random& random, std::int64_t samples) {
+    const std::int64_t top = top_of(chain);
+    std::vector<Code> words(3000);
+    for (Code& word : words) word = static_cast<Code>(random.whole(-top - 1, top));
+    const auto response = plain_response(chain, words);
+    const auto reference = run(exact_chain(chain).stages, values_of_words(chain, words));
+    double sum = 0.0, squares = 0.0;
+    for (std::size_t n = words.size() - static_cast<std::size_t>(samples); n < words.size(); ++n) {
+        sum += response[n] - reference[n];
+        squares += (response[n] - reference[n]) * (response[n] - reference[n]);
+    }
+    const auto count = static_cast<double>(samples);
+    return {sum / count, std::sqrt(squares / count)};
+}
+
+}  // namespace
+
 TEST_CASE("error bound: rms and bias of noise stay within, and not far below", "[arithmetic]") {
     Random random(403);
     INFO("seed 403");
@@ -197,20 +227,9 @@ TEST_CASE("error bound: rms and bias of noise stay within, and not far below", "
         BoundUse use;
         use.samples = 3000;
         use.noise_like = true;
-        const std::int64_t top = top_of(chain.described);
-        use.input_rms =
-            std::ldexp(static_cast<double>(top), -chain.described.stages.front().in.word.fraction_bits) / 1.7321;
+        use.input_rms = rms_of_noise(chain.described);
         const ErrorBound bound = derive(chain.described, use);
-        std::vector<Code> words(3000);
-        for (Code& word : words) word = static_cast<Code>(random.whole(-top - 1, top));
-        const auto response = plain_response(chain.described, words);
-        const auto reference = run(exact_chain(chain.described).stages, values_of_words(chain.described, words));
-        double sum = 0.0, squares = 0.0;
-        for (std::size_t n = 0; n < words.size(); ++n) {
-            sum += response[n] - reference[n];
-            squares += (response[n] - reference[n]) * (response[n] - reference[n]);
-        }
-        const double rms = std::sqrt(squares / 3000.0), mean = sum / 3000.0;
+        const auto [mean, rms] = errors_of_noise(chain.described, random, use.samples);
         INFO("trial " << trial << ": " << text_of(chain) << ", rms " << rms / bound.step << " of "
                       << bound.rms / bound.step << ", bias " << mean / bound.step << " of "
                       << bound.bias_lower / bound.step << " .. " << bound.bias_upper / bound.step);
@@ -260,23 +279,11 @@ TEST_CASE("error bound: errors made before the judged samples are in rms and bia
         BoundUse use;
         use.samples = random.whole(1, 40);
         use.noise_like = true;
-        const std::int64_t top = top_of(chain.described);
-        use.input_rms =
-            std::ldexp(static_cast<double>(top), -chain.described.stages.front().in.word.fraction_bits) / 1.7321;
+        use.input_rms = rms_of_noise(chain.described);
         const ErrorBound from_rest = derive(chain.described, use);
         use.has_past = true;
         const ErrorBound bound = derive(chain.described, use);
-        std::vector<Code> words(3000);
-        for (Code& word : words) word = static_cast<Code>(random.whole(-top - 1, top));
-        const auto response = plain_response(chain.described, words);
-        const auto reference = run(exact_chain(chain.described).stages, values_of_words(chain.described, words));
-        double sum = 0.0, squares = 0.0;
-        for (std::size_t n = words.size() - static_cast<std::size_t>(use.samples); n < words.size(); ++n) {
-            sum += response[n] - reference[n];
-            squares += (response[n] - reference[n]) * (response[n] - reference[n]);
-        }
-        const auto count = static_cast<double>(use.samples);
-        const double rms = std::sqrt(squares / count), mean = sum / count;
+        const auto [mean, rms] = errors_of_noise(chain.described, random, use.samples);
         INFO("trial " << trial << ": " << text_of(chain) << ", " << use.samples << " samples, rms " << rms / bound.step
                       << " of " << bound.rms / bound.step << ", bias " << mean / bound.step << " of "
                       << bound.bias_lower / bound.step << " .. " << bound.bias_upper / bound.step);
