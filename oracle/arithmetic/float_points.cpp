@@ -63,6 +63,9 @@ public:
             if (median->points % 2 == 0) mean.add_whole(in_), mean.add_whole(in_);
             add("mean", Place::behind, mean);
         }
+        // What an integrator loses, no comb takes away again.
+        if (std::holds_alternative<CicDecimator>(design) || std::holds_alternative<CicInterpolator>(design))
+            push("registers", Place::behind, unlimited, 1);
         if (element_.comb() != nullptr) of_comb(*element_.comb());
         if (element_.has_sums()) of_sums();
         add_output();
