@@ -188,6 +188,24 @@ TEST_CASE("error bound: the worked round-off noise of a one-pole and of a pair o
     CHECK_THAT(two.terms[0].l1, WithinRel(8.964211125722, 1e-6));
 }
 
+TEST_CASE("error bound: a recursion by b and a has the limits of the section that it is", "[arithmetic]") {
+    const BiquadSection section = cookbook(Shape::low_pass, 0.05, 2.0);
+    const Recursion recursion{{section.b0, section.b1, section.b2}, {1.0, section.a1, section.a2}};
+    for (const Structure structure : {Structure::direct_1, Structure::direct_2, Structure::transposed_2}) {
+        for (const NumberKind number : {NumberKind::integer, NumberKind::float32}) {
+            StageArithmetic said;
+            said.number = number;
+            said.rounding = Rounding::half_up;
+            said.structure = structure;
+            INFO(name_of(structure) << ", " << name_of(number));
+            const ErrorBound cascade = derive(one_stage(BiquadCascade{{section}}, 20, said));
+            const ErrorBound iir = derive(one_stage(recursion, 20, said, "iir"));
+            CHECK_THAT(iir.lower, WithinRel(cascade.lower, 1e-9));
+            CHECK_THAT(iir.upper, WithinRel(cascade.upper, 1e-9));
+        }
+    }
+}
+
 namespace {
 
 struct Moments {
