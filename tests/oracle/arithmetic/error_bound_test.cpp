@@ -6,6 +6,7 @@
 #include "tests/oracle/arithmetic/plain_arithmetic.hpp"
 #include "tests/oracle/arithmetic/random_description.hpp"
 #include "tests/oracle/arithmetic/stimulus_words.hpp"
+#include "tests/support/rounds.hpp"
 
 using namespace halflsb;
 using namespace halflsb::testing;
@@ -97,7 +98,8 @@ TEST_CASE("error bound: an adversary reaches more than half of it in a fir or a 
     Random random(402);
     INFO("seed 402");
     int checked = 0;
-    while (checked < 60) {
+    const int chains = test::rounds_of(60);
+    while (checked < chains) {
         const RandomChain chain = random_chain(random);
         if (chain.stages.size() > 1) continue;
         const auto* fir = std::get_if<Fir>(&chain.stages.front().design);
@@ -240,7 +242,8 @@ TEST_CASE("error bound: rms and bias of noise stay within, and not far below", "
     Random random(403);
     INFO("seed 403");
     int near_rms = 0, near_bias = 0, statistical = 0;
-    for (int trial = 0; trial < 150; ++trial) {
+    const int trials = test::rounds_of(150);
+    for (int trial = 0; trial < trials; ++trial) {
         RandomChain chain = random_chain(random);
         BoundUse use;
         use.samples = 3000;
@@ -264,7 +267,7 @@ TEST_CASE("error bound: rms and bias of noise stay within, and not far below", "
         near_rms += bound.rms <= 2.0 * rms;
         near_bias += bound.bias_upper - bound.bias_lower <= 0.5 * bound.rms;
     }
-    CHECK(statistical > 50);
+    CHECK(statistical > trials / 3);
     CHECK(near_rms > statistical / 2);
     CHECK(near_bias > statistical / 2);
 }
@@ -292,7 +295,8 @@ TEST_CASE("error bound: errors made before the judged samples are in rms and bia
     Random random(404);
     INFO("seed 404");
     int beyond_without = 0;
-    for (int trial = 0; trial < 150; ++trial) {
+    const int trials = test::rounds_of(150);
+    for (int trial = 0; trial < trials; ++trial) {
         RandomChain chain = random_chain(random);
         BoundUse use;
         use.samples = random.whole(1, 40);
@@ -312,8 +316,8 @@ TEST_CASE("error bound: errors made before the judged samples are in rms and bia
         REQUIRE((bound.clipped_bias_lower <= bound.worst_bias_lower && bound.bias_lower <= from_rest.bias_lower));
         beyond_without += mean < from_rest.bias_lower || mean > from_rest.bias_upper || rms > from_rest.rms;
     }
-    // From rest the same limits would blame firmware that is right.
-    CHECK(beyond_without > 0);
+    // From rest the same limits would blame firmware that is right; a tenth of the trials has none to show it.
+    if (test::draws_all_rounds()) CHECK(beyond_without > 0);
 }
 
 TEST_CASE("error bound: the past of a floor in a slow loop is most of its mean", "[arithmetic]") {
