@@ -16,7 +16,7 @@ namespace {
 
 /// Samples whose twins are run for sensitivity, over all cases; each change costs a pass of them and a judge.
 constexpr std::int64_t sight_budget = std::int64_t{1} << 19;
-constexpr std::int64_t taps_for_free = 64;
+constexpr std::int64_t operations_for_free = 64;
 
 std::vector<PredictedAssumption> assumptions_of(const DescribedChain& chain) {
     std::vector<PredictedAssumption> all;
@@ -108,15 +108,6 @@ std::int64_t longest_case(const Plan& plan, const std::vector<std::size_t>& sele
 }
 
 /// What a sample costs beside one of a short filter.
-std::int64_t cost_of(const FilterChain& chain) {
-    std::int64_t taps = 0;
-    for (const FilterStage& stage : chain) {
-        if (const auto* fir = std::get_if<Fir>(&stage.design)) taps += static_cast<std::int64_t>(fir->taps.size());
-        if (const auto* median = std::get_if<Median>(&stage.design)) taps += median->points;
-    }
-    return 1 + taps / taps_for_free;
-}
-
 Plan with_rounding(Plan plan) {
     plan.filter = with_rounding(std::move(plan.filter));
     for (Case& the_case : plan.cases) {
@@ -161,8 +152,8 @@ PredictedSight predict_sight(const Plan& plan, const std::vector<std::size_t>& s
     std::int64_t samples = 0;
     for (const std::size_t index : selected) {
         const Case& the_case = plan.cases[index];
-        samples += std::min(the_case.stimulus->length_samples(), sensitivity_samples) * plan.signal.channels *
-                   cost_of(plan.filter);
+        samples += std::min(the_case.stimulus->length_samples(), sensitivity_samples(plan.filter)) *
+                   plan.signal.channels * (1 + operations_a_sample(plan.filter) / operations_for_free);
         if (samples <= sight_budget || looked_at.empty()) looked_at.push_back(index);
         sight.has_exact_rule =
             sight.has_exact_rule || std::any_of(the_case.rules.begin(), the_case.rules.end(), [](const Rule& rule) {

@@ -97,6 +97,22 @@ void count_differences(const Plan& plan, std::span<const Code> a, std::span<cons
 
 }  // namespace
 
+std::int64_t operations_a_sample(const FilterChain& filter) {
+    std::int64_t operations = 1;
+    for (const FilterStage& stage : filter) {
+        if (const auto* fir = std::get_if<Fir>(&stage.design)) operations += std::ssize(fir->taps);
+        if (const auto* fewer = std::get_if<FirDecimator>(&stage.design)) operations += std::ssize(fewer->taps);
+        if (const auto* more = std::get_if<FirInterpolator>(&stage.design)) operations += std::ssize(more->taps);
+        if (const auto* median = std::get_if<Median>(&stage.design)) operations += median->points;
+    }
+    return operations;
+}
+
+std::int64_t sensitivity_samples(const FilterChain& filter) {
+    constexpr std::int64_t operations = std::int64_t{1} << 27, most = std::int64_t{1} << 17;
+    return std::min(most, operations / operations_a_sample(filter));
+}
+
 Sensitivity sensitivity(const Plan& plan, const std::vector<std::size_t>& cases, const std::function<bool()>& go_on) {
     Sensitivity result;
     if (plan.filter_is_unknown) {
@@ -115,12 +131,13 @@ Sensitivity sensitivity(const Plan& plan, const std::vector<std::size_t>& cases,
     for (const ArithmeticChange& change : changes)
         result.changes.push_back({change.name, ChangeSeen::Answer::same, {}, {}, 0, 0.0});
     const auto channels = static_cast<std::size_t>(plan.signal.channels);
+    result.most_samples = sensitivity_samples(plan.filter);
     for (const std::size_t index : cases) {
         if (!go_on()) break;
         const Case the_case = case_to_look_at(plan.cases[index]);
         const CaseRates rates(plan, the_case);
         const std::int64_t length = std::min(the_case.stimulus->length_samples(),
-                                             rates.cycles_within(sensitivity_samples) * rates.cycle().inputs);
+                                             rates.cycles_within(result.most_samples) * rates.cycle().inputs);
         result.is_cut = result.is_cut || length < the_case.stimulus->length_samples();
         result.samples += length;
         std::vector<Code> sent(static_cast<std::size_t>(length) * channels);

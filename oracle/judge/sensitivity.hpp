@@ -26,15 +26,20 @@ struct ChangeSeen {
 
 struct Sensitivity {
     std::vector<ChangeSeen> changes;
-    std::string unknown;       ///< why nothing can be said ("rounding is not said"); "" otherwise
-    std::int64_t samples = 0;  ///< looked at
-    bool is_cut = false;       ///< of long cases only the first sensitivity_samples were
+    std::string unknown;            ///< why nothing can be said ("rounding is not said"); "" otherwise
+    std::int64_t samples = 0;       ///< looked at
+    std::int64_t most_samples = 0;  ///< of one case
+    bool is_cut = false;            ///< some case is longer than that
     /// A firmware that computes as promised fails this rule in this case, so nothing that is seen there tells anything
     /// of a change; "" when all pass.
     std::string failing_rule = {}, failing_case = {};
 };
 
-inline constexpr std::int64_t sensitivity_samples = std::int64_t{1} << 17;
+/// What a sample costs in a twin: taps, and points of medians, of all stages; at least 1.
+std::int64_t operations_a_sample(const FilterChain& filter);
+/// Of each case the first ones, at most: 2^17, and fewer where many taps make a twin slow, so that one run of it is
+/// over in a second or so.
+std::int64_t sensitivity_samples(const FilterChain& filter);
 
 /// Over the cases of these indices, rules `unchanged` left out. Looks at a case until a change is seen, so it costs a
 /// twin and a judge for each change and case in the worst case. `go_on` is asked between cases and changes.

@@ -149,7 +149,7 @@ std::string sight_text(const PredictedSight& sight, const Signal& signal, const 
                             " only, " + std::to_string(sight.cases_left_out) + " left out; --case selects others",
                         2);
     if (told.is_cut)
-        text += "  of long cases the first " + count_text(sensitivity_samples) + " samples were looked at\n";
+        text += "  of long cases the first " + count_text(told.most_samples) + " samples were looked at\n";
     return text + "\n";
 }
 

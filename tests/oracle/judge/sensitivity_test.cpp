@@ -93,3 +93,13 @@ TEST_CASE("sensitivity: without a stated rounding nothing is known", "[judge]") 
     CHECK(found.unknown == "rounding is not said");
     CHECK(found.changes.empty());
 }
+
+TEST_CASE("sensitivity: of a very long fir fewer samples are looked at", "[judge]") {
+    const auto samples = [](std::size_t taps) {
+        return sensitivity_samples({FilterStage{Fir{std::vector<double>(taps, 0.01)}, std::nullopt, {}, "fir"}});
+    };
+    CHECK(samples(3) == 131072);
+    CHECK(samples(1023) == 131072);
+    CHECK(samples(4095) == 32768);
+    CHECK(samples(65536) == 2047);
+}

@@ -103,6 +103,7 @@ TEST_CASE("prediction report: what rules do not see has its remedy, unless exact
     sight.cases = 2;
     sight.cases_left_out = 3;
     sight.sensitivity.is_cut = true;
+    sight.sensitivity.most_samples = 131072;
     sight.sensitivity.changes = {{"floor", ChangeSeen::Answer::seen, "error", "step", 9, 1.0},
                                  {"half-even", ChangeSeen::Answer::unseen, "", "", 12345, 1.0},
                                  {"wraps", ChangeSeen::Answer::same, "", "", 0, 0.0}};
