@@ -1,50 +1,31 @@
 #include "oracle/arithmetic/float_points.hpp"
 
+#include <algorithm>
 #include <cmath>
 #include <limits>
 
 #include "oracle/arithmetic/chain_elements.hpp"
+#include "oracle/arithmetic/float_sum.hpp"
 
 namespace halflsb {
 
 namespace {
 
+using namespace float32;
 using Place = RoundingPoint::Place;
 
-constexpr double unit = 0x1p-24, smallest = 0x1p-149;
-// Second-order terms, and the errors that are in the numbers themselves: below this of the first-order bound while
-// n u < 2^-11 for sums of n terms.
-constexpr double beyond_first_order = 1.0 + 0x1p-10;
 constexpr double unlimited = std::numeric_limits<double>::infinity();
-
-/// The error of a sum: each term of `size` is rounded once as a product, unless it is fused, and once in every addition
-/// from its own on.
-class SumError {
-public:
-    explicit SumError(bool fused) : fused_(fused) {}
-
-    void add_product(double size) { add(size, !fused_ || partial_ == 0.0); }
-    void add_whole(double size) { add(size, false); }
-    double value() const { return beyond_first_order * unit * error_ + static_cast<double>(2 * count_) * smallest; }
-    int count() const { return count_; }
-
-private:
-    void add(double size, bool is_rounded) {
-        if (size == 0.0) return;
-        if (is_rounded) error_ += size;
-        if (count_++ > 0) error_ += partial_ + size;
-        partial_ += size;
-    }
-
-    bool fused_;
-    double partial_ = 0.0, error_ = 0.0;
-    int count_ = 0;
-};
 
 class ElementPoints {
 public:
-    ElementPoints(const ChainElement& element, const ExactChain& exact, const FloatUse& use)
-        : element_(element), stage_(*element.stage), use_(use) {
+    /// `error_in` bounds the error of what comes in.
+    ElementPoints(const ChainElement& element, const ExactChain& exact, const FloatUse& use, double error_in)
+        : element_(element),
+          stage_(*element.stage),
+          use_(use),
+          gain_(l1_norm(element.exact)),
+          loop_gain_(element.is_recursive() ? loop_gain() : 1.0),
+          error_out_(error_in * gain_) {
         const auto level = [&](std::size_t stages, std::size_t sections) {
             FilterChain path(exact.stages.begin(), exact.stages.begin() + static_cast<std::ptrdiff_t>(stages));
             if (sections > 0) {
@@ -57,13 +38,18 @@ public:
             return use.largest_input * l1_norm(path) * beyond_first_order;
         };
         const bool is_section = std::holds_alternative<BiquadCascade>(element.exact.front().design);
-        in_ = is_section ? level(element.node.stage, element.node.section)
-                         : level(exact.first_of[element.stage_index], 0);
-        out_ = is_section ? level(element.node.stage, element.node.section + 1) : level(element.node.stage + 1, 0);
+        in_ = (is_section ? level(element.node.stage, element.node.section)
+                          : level(exact.first_of[element.stage_index], 0)) +
+              error_in;
+        out_ = (is_section ? level(element.node.stage, element.node.section + 1) : level(element.node.stage + 1, 0)) +
+               error_out_;
         output_path_.assign(exact.stages.begin(), exact.stages.begin() + static_cast<std::ptrdiff_t>(
                                                                              exact.first_of[element.stage_index + 1]));
-        state_ = element.has_sums() ? in_ * l1_norm(element.loop()) * beyond_first_order : 0.0;
+        state_ = element.has_sums() ? in_ * loop_gain_ * beyond_first_order : 0.0;
     }
+
+    /// Of what goes out, errors that came in included; after find().
+    double error_out() const { return error_out_; }
 
     std::vector<RoundingPoint> find() {
         const FilterDesign& design = element_.exact.front().design;
@@ -77,6 +63,9 @@ public:
             if (median->points % 2 == 0) mean.add_whole(in_), mean.add_whole(in_);
             add("mean", Place::behind, mean);
         }
+        // What an integrator loses, no comb takes away again.
+        if (std::holds_alternative<CicDecimator>(design) || std::holds_alternative<CicInterpolator>(design))
+            push("registers", Place::behind, unlimited, 1);
         if (element_.comb() != nullptr) of_comb(*element_.comb());
         if (element_.has_sums()) of_sums();
         add_output();
@@ -89,7 +78,11 @@ private:
     /// Input words that a float32 does not hold exactly.
     void add_input() {
         if (stage_.in.is_float || !is_first_of_stage() || stage_.in.word.bits <= 25) return;
-        push("input", Place::entry, unit * in_, 1);
+        const double error = unit * in_;
+        push("input", Place::entry, error, 1);
+        in_ += error;
+        out_ += error * gain_;
+        state_ += error * loop_gain_;
     }
 
     void of_taps(const std::vector<double>& taps) {
@@ -126,7 +119,7 @@ private:
         sum.add_product(in_ * std::fabs(comb.direct));
         sum.add_product(in_ * std::fabs(comb.forward));
         sum.add_product(out_ * std::fabs(comb.feedback));
-        add("sum", Place::loop, sum);
+        push("sum", Place::loop, with_own_errors(sum.value(), out_), sum.count());
     }
 
     void of_sums() {
@@ -142,14 +135,16 @@ private:
             case Structure::direct_2: {
                 sum.add_whole(in_);
                 for (std::size_t k = 1; k <= order; ++k) sum.add_product(a(k) * state_);
-                add("state", Place::entry, sum);
+                const double error = with_own_errors(sum.value(), state_);
+                push("state", Place::entry, error, sum.count());
+                out_ += error * gain_;
                 SumError out(stage_.fused);
                 for (std::size_t k = 0; k <= order; ++k) out.add_product(b(k) * state_);
                 add("output", Place::behind, out);
                 break;
             }
             case Structure::transposed_2: {
-                double all = sum_of_transposed(order, b, a);
+                const double all = with_own_errors(sum_of_transposed(order, b, a), out_);
                 push("sums", Place::loop, all, static_cast<int>(3 * order + 1));
                 break;
             }
@@ -157,19 +152,21 @@ private:
                 // d = x - s, p = C d, s + p.
                 const double d = in_ + out_, p = b(0) * d;
                 const double rounded = b(0) * d + (stage_.fused ? 0.0 : p) + out_ + p;
-                push("sum", Place::loop, unit * beyond_first_order * rounded + 3.0 * smallest, 3);
+                push("sum", Place::loop, with_own_errors(unit * beyond_first_order * rounded + 3.0 * smallest, out_),
+                     3);
                 break;
             }
             case Structure::leak: {
                 const double x = b(0) * in_, s = b(0) * out_;
                 const double rounded = (stage_.fused ? 0.0 : x + s) + (out_ + x) + (out_ + x + s);
-                push("sum", Place::loop, unit * beyond_first_order * rounded + 4.0 * smallest, 4);
+                push("sum", Place::loop, with_own_errors(unit * beyond_first_order * rounded + 4.0 * smallest, out_),
+                     4);
                 break;
             }
             default:
                 for (std::size_t k = 0; k <= order; ++k) sum.add_product(b(k) * in_);
                 for (std::size_t k = 1; k <= order; ++k) sum.add_product(a(k) * out_);
-                add("sum", Place::loop, sum);
+                push("sum", Place::loop, with_own_errors(sum.value(), out_), sum.count());
         }
     }
 
@@ -200,10 +197,22 @@ private:
         point.step = step;
         point.error = rounding_error(stage_.rounding, {unlimited, -unlimited, unlimited}).times(step);
         point.variance_each = point.error.variance;
+        error_out_ += step;
     }
 
     void add(const char* what, Place place, const SumError& sum) {
         if (sum.value() > 0.0) push(what, place, sum.value(), sum.count());
+    }
+
+    /// The numbers that a loop feeds back hold what it has made of its own errors. Those grow with the numbers at most
+    /// in proportion: e (1 + E / numbers) with E = gain e (1 + E / numbers). Where E comes near the numbers themselves
+    /// nothing is known of them.
+    double with_own_errors(double error, double& numbers) const {
+        if (!element_.is_recursive() || error == 0.0) return error;
+        const double part = error * loop_gain_ / numbers;
+        if (!(part < 0.5)) return unlimited;
+        numbers /= 1.0 - part;
+        return error / (1.0 - part);
     }
 
     double loop_gain() const {
@@ -212,10 +221,8 @@ private:
     }
 
     RoundingPoint& push(const char* what, Place place, double error, int count) {
-        // What a loop makes of its own errors must stay small against what it computes, else nothing is known of the
-        // numbers that are rounded.
-        const double gain = place == Place::behind || !element_.is_recursive() ? 1.0 : loop_gain();
-        if (error * gain > 0x1p-11 * out_ && place != Place::behind) error = unlimited;
+        if (error > 0.0)
+            error_out_ += error * (place == Place::loop ? loop_gain_ : place == Place::entry ? gain_ : 1.0);
         RoundingPoint point;
         point.name = element_.name + ", " + what;
         point.stage = element_.stage_index;
@@ -237,18 +244,46 @@ private:
     const ChainElement& element_;
     const DescribedStage& stage_;
     const FloatUse& use_;
+    double gain_, loop_gain_, error_out_;
     double in_ = 0.0, out_ = 0.0, state_ = 0.0;
     FilterChain output_path_;
     std::vector<RoundingPoint> points_;
 };
 
+/// Largest error that the points of an element of integers put into its result.
+double error_of_integers(const ChainElement& element, const std::vector<RoundingPoint>& points, double gain) {
+    double error = 0.0;
+    for (const RoundingPoint& point : points) {
+        if (point.stage != element.stage_index || point.node.section != element.node.section) continue;
+        const bool comes_back = point.place == Place::loop && element.is_recursive();
+        const double reach = point.place == Place::entry ? gain
+                             : !comes_back               ? 1.0
+                             : element.has_sums()        ? l1_norm(element.loop())
+                                                         : 1.0 / (1.0 - std::fabs(element.comb()->feedback));
+        error += point.error.largest() * reach * (point.saves_fraction ? 2.0 : 1.0);
+    }
+    return error;
+}
+
 }  // namespace
 
 std::vector<RoundingPoint> float_points(const DescribedChain& chain, const ExactChain& exact, const FloatUse& use) {
     std::vector<RoundingPoint> all;
-    for (const ChainElement& element : chain_elements(chain, exact)) {
-        if (element.is_integer()) continue;
-        for (RoundingPoint& point : ElementPoints(element, exact, use).find()) all.push_back(std::move(point));
+    const auto elements = chain_elements(chain, exact);
+    if (std::none_of(elements.begin(), elements.end(), [](const ChainElement& e) { return !e.is_integer(); }))
+        return all;
+    const std::vector<RoundingPoint> of_integers = rounding_points(chain, exact);
+    double error = 0.0;
+    for (const ChainElement& element : elements) {
+        if (element.is_integer()) {
+            const double gain = l1_norm(element.exact);
+            error = error * gain + error_of_integers(element, of_integers, gain);
+            continue;
+        }
+        ElementPoints points(element, exact, use, error);
+        for (RoundingPoint& point : points.find()) all.push_back(std::move(point));
+        // Where no limit is told any more, what follows adds nothing to that.
+        error = std::isfinite(points.error_out()) ? points.error_out() : 0.0;
     }
     return all;
 }

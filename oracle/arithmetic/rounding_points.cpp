@@ -137,13 +137,7 @@ std::vector<RoundingPoint> rounding_points(const DescribedChain& chain, const Ex
 
 FilterChain path_of(const RoundingPoint& point, const FilterChain& chain) {
     FilterChain path;
-    FilterStage factor{Fir{{1.0, -1.0}}, std::nullopt};
-    if (point.saves_fraction) path.push_back(factor);
-    if (const auto* recursion = std::get_if<Recursion>(&chain[point.node.stage].design);
-        recursion != nullptr && point.place == RoundingPoint::Place::loop) {
-        factor.design = Recursion{{1.0}, recursion->a};
-        path.push_back(factor);
-    }
+    if (point.saves_fraction) path.push_back({Fir{{1.0, -1.0}}, std::nullopt});
     const FilterChain rest = point.place == RoundingPoint::Place::entry ? path_from_section(chain, point.node)
                                                                         : path_to_output(chain, point.node);
     path.insert(path.end(), rest.begin(), rest.end());

@@ -6,6 +6,7 @@
 #include <utility>
 
 #include "oracle/arithmetic/described.hpp"
+#include "oracle/arithmetic/family.hpp"
 #include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/derived_limits.hpp"
 #include "oracle/judge/latency_evidence.hpp"
@@ -114,6 +115,10 @@ std::optional<std::pair<std::string, std::string>> not_covered(const Signal& sig
     }
     for (std::size_t i = 0; i < chain.stages.size(); ++i) {
         const DescribedStage& stage = chain.stages[i];
+        if (stage.number == NumberKind::float32 && family_of(stage.stage) == Family::cic) {
+            return std::pair("a cic in float32 has none: what its integrators lose no comb brings back",
+                             "give number = \"integer\" and words of whole numbers, or a number for the limit");
+        }
         if (stage.stage.initial == Initial::zeros) continue;
         // Whole numbers that start as if the first sample had gone on for ever err as if it had.
         const bool is_finite = samples_to_forget(stage).has_value() && stage.number == NumberKind::integer;

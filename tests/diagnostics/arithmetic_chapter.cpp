@@ -132,6 +132,9 @@ void show_rules(Page& page) {
         {"", "kind = \"one-pole\"\ncoefficient = 1e-6\n", "coefficient_fraction_bits = 31\nrounding = \"floor\"\n"});
     parts.rule = "kind = \"error\"\nmax_lsb = \"derived\"\n";
     show_plan(page, "a derived limit wider than full scale", parts.text());
+    parts = plan_with({"", "kind = \"cic-decimator\"\norder = 4\nfactor = 4\n", "number = \"float32\"\n"});
+    parts.rule = "kind = \"error\"\nmax_lsb = \"derived\"\n";
+    show_plan(page, "a derived limit of a CIC in float32", parts.text());
     parts = plan_with({"", "kind = \"one-pole\"\ncoefficient = 1e-8\n", "number = \"float32\"\n"});
     parts.rule = "kind = \"error\"\nmax_lsb = \"derived\"\n";
     show_plan(page, "a derived limit that has no end", parts.text());

@@ -6,6 +6,7 @@
 #include "tests/oracle/arithmetic/plain_arithmetic.hpp"
 #include "tests/oracle/arithmetic/random_description.hpp"
 #include "tests/oracle/arithmetic/stimulus_words.hpp"
+#include "tests/support/rounds.hpp"
 
 using namespace halflsb;
 using namespace halflsb::testing;
@@ -97,7 +98,8 @@ TEST_CASE("error bound: an adversary reaches more than half of it in a fir or a 
     Random random(402);
     INFO("seed 402");
     int checked = 0;
-    while (checked < 60) {
+    const int chains = test::rounds_of(60);
+    while (checked < chains) {
         const RandomChain chain = random_chain(random);
         if (chain.stages.size() > 1) continue;
         const auto* fir = std::get_if<Fir>(&chain.stages.front().design);
@@ -188,6 +190,24 @@ TEST_CASE("error bound: the worked round-off noise of a one-pole and of a pair o
     CHECK_THAT(two.terms[0].l1, WithinRel(8.964211125722, 1e-6));
 }
 
+TEST_CASE("error bound: a recursion by b and a has the limits of the section that it is", "[arithmetic]") {
+    const BiquadSection section = cookbook(Shape::low_pass, 0.05, 2.0);
+    const Recursion recursion{{section.b0, section.b1, section.b2}, {1.0, section.a1, section.a2}};
+    for (const Structure structure : {Structure::direct_1, Structure::direct_2, Structure::transposed_2}) {
+        for (const NumberKind number : {NumberKind::integer, NumberKind::float32}) {
+            StageArithmetic said;
+            said.number = number;
+            said.rounding = Rounding::half_up;
+            said.structure = structure;
+            INFO(name_of(structure) << ", " << name_of(number));
+            const ErrorBound cascade = derive(one_stage(BiquadCascade{{section}}, 20, said));
+            const ErrorBound iir = derive(one_stage(recursion, 20, said, "iir"));
+            CHECK_THAT(iir.lower, WithinRel(cascade.lower, 1e-9));
+            CHECK_THAT(iir.upper, WithinRel(cascade.upper, 1e-9));
+        }
+    }
+}
+
 namespace {
 
 struct Moments {
@@ -222,7 +242,8 @@ TEST_CASE("error bound: rms and bias of noise stay within, and not far below", "
     Random random(403);
     INFO("seed 403");
     int near_rms = 0, near_bias = 0, statistical = 0;
-    for (int trial = 0; trial < 150; ++trial) {
+    const int trials = test::rounds_of(150);
+    for (int trial = 0; trial < trials; ++trial) {
         RandomChain chain = random_chain(random);
         BoundUse use;
         use.samples = 3000;
@@ -246,7 +267,7 @@ TEST_CASE("error bound: rms and bias of noise stay within, and not far below", "
         near_rms += bound.rms <= 2.0 * rms;
         near_bias += bound.bias_upper - bound.bias_lower <= 0.5 * bound.rms;
     }
-    CHECK(statistical > 50);
+    CHECK(statistical > trials / 3);
     CHECK(near_rms > statistical / 2);
     CHECK(near_bias > statistical / 2);
 }
@@ -274,7 +295,8 @@ TEST_CASE("error bound: errors made before the judged samples are in rms and bia
     Random random(404);
     INFO("seed 404");
     int beyond_without = 0;
-    for (int trial = 0; trial < 150; ++trial) {
+    const int trials = test::rounds_of(150);
+    for (int trial = 0; trial < trials; ++trial) {
         RandomChain chain = random_chain(random);
         BoundUse use;
         use.samples = random.whole(1, 40);
@@ -294,8 +316,8 @@ TEST_CASE("error bound: errors made before the judged samples are in rms and bia
         REQUIRE((bound.clipped_bias_lower <= bound.worst_bias_lower && bound.bias_lower <= from_rest.bias_lower));
         beyond_without += mean < from_rest.bias_lower || mean > from_rest.bias_upper || rms > from_rest.rms;
     }
-    // From rest the same limits would blame firmware that is right.
-    CHECK(beyond_without > 0);
+    // From rest the same limits would blame firmware that is right; a tenth of the trials has none to show it.
+    if (test::draws_all_rounds()) CHECK(beyond_without > 0);
 }
 
 TEST_CASE("error bound: the past of a floor in a slow loop is most of its mean", "[arithmetic]") {

@@ -79,6 +79,20 @@ TEST_CASE("derived: a preloaded recursion has no limit, a preloaded sum of whole
     CHECK(refused(plan).size() == 1);
 }
 
+TEST_CASE("derived: a CIC of whole numbers has a limit, one in float32 has none", "[judge]") {
+    Plan plan = test::moving_average_plan();
+    plan.filter = {FilterStage{CicDecimator{3, 4, 1, std::nullopt, 0}, std::nullopt, {}, "cic-decimator"}};
+    CHECK(refused(plan).empty());
+    plan.filter[0].arithmetic.number = NumberKind::float32;
+    const auto found = refused(plan);
+    REQUIRE(found.size() == 1);
+    CHECK(found[0].problem ==
+          "no limit follows from the arithmetic in case \"a case\": a cic in float32 has none: what its integrators "
+          "lose no comb brings back");
+    CHECK(found[0].remedy == "give number = \"integer\" and words of whole numbers, or a number for the limit");
+    CHECK(std::isinf(derived_limits(plan, noise_case(plan, derived_rule(plan)), 1)->error.largest()));
+}
+
 TEST_CASE("derived: what a flush leaves of the case before is in the limits", "[judge]") {
     const Plan plan = one_pole_plan();
     Case the_case = noise_case(plan, derived_rule(plan));

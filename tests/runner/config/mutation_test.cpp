@@ -5,6 +5,7 @@
 #include <regex>
 
 #include "tests/support/config_texts.hpp"
+#include "tests/support/rounds.hpp"
 
 using namespace halflsb;
 
@@ -67,7 +68,7 @@ bool is_well_formed(const std::string& message, const std::string& file) {
 TEST_CASE("mutations: no spoiled plan or rig crashes the readers, and every message is whole", "[config]") {
     // Fixed, so that a run can be repeated; a failure names seed and round.
     constexpr std::mt19937::result_type seed = 20261201;
-    constexpr int rounds = 1500;
+    const int rounds = test::rounds_of(1500);
     std::mt19937 random(seed);
     int good = 0;
     for (int round = 0; round < rounds; ++round) {

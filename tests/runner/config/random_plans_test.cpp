@@ -1,11 +1,12 @@
-// A thousand random plans: as they are they are read, printed and read again to the same plan; with one word
-// spoiled they are refused at that line.
+// A thousand random plans, a hundred under the sanitizers: as they are they are read, printed and read again to the
+// same plan; with one word spoiled they are refused at that line.
 #include "tests/support/random_plans.hpp"
 
 #include <catch2/catch.hpp>
 
 #include "runner/config/resolved_plan.hpp"
 #include "tests/support/config_texts.hpp"
+#include "tests/support/rounds.hpp"
 
 using namespace halflsb;
 using namespace halflsb::random_plans;
@@ -13,7 +14,7 @@ using namespace halflsb::random_plans;
 namespace {
 
 constexpr std::uint32_t seed = 20261202;
-constexpr int rounds = 1000;
+const int rounds = test::rounds_of(1000);
 
 std::string resolved(const std::string& text, FakeFiles files) {
     files.contents["plan.toml"] = text;
@@ -273,8 +274,8 @@ TEST_CASE("random plans: read, printed and read again they are the same", "[conf
     for (const Recipe* recipe : {&plan_recipe(), &signal_recipe(), &arithmetic_recipe(), &case_recipe()}) look(*recipe);
     INFO("words that no plan has:\n" << unused);
     // One in ten may: level_unit of ten shapes needs a signal with a unit and no other level beside it, which is
-    // seldom drawn; plan_words_test and plan_makers_test hold those.
-    CHECK(missing * 10 <= known);
+    // seldom drawn; plan_words_test and plan_makers_test hold those. A tenth of the rounds draws too few to tell.
+    if (test::draws_all_rounds()) CHECK(missing * 10 <= known);
     for (const char* header : {"[case.each]", "[case.settings]", "[filter.arithmetic]", "[[rule]]"}) {
         INFO(header);
         CHECK(words.count(header) == 1);
