@@ -99,6 +99,7 @@ DescribedStage described_stage(const FilterStage& stage, const Port& in, const P
     described.accumulator_bits = said.accumulator_bits.value_or(wide_bits);
     described.accumulator_overflow = said.accumulator_overflow.value_or(Overflow::wrap);
     described.accumulator_fraction_bits = said.accumulator_fraction_bits;
+    if (std::holds_alternative<CicDecimator>(stage.design)) described.discarded_bits = said.discarded_bits;
     describe_state(described);
     return described;
 }
