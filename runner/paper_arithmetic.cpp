@@ -140,6 +140,7 @@ PredictedArithmetic predict_arithmetic(const Plan& plan, const DescribedChain& d
     told.cases = case_errors(plan, channel, selected, told.error, worth, go_on);
     if (!go_on()) return told;
     told.nodes = predict_nodes(described);
+    told.registers = predict_registers(described);
     told.coefficients = predict_coefficients(described);
     if (plan.signal.output.has_lsb() && go_on()) told.silence = silence_of(described, worth);
     return told;

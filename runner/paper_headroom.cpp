@@ -3,8 +3,10 @@
 #include <algorithm>
 #include <cmath>
 
+#include "oracle/arithmetic/cic_registers.hpp"
 #include "oracle/arithmetic/named_coefficients.hpp"
 #include "oracle/arithmetic/node_impulse.hpp"
+#include "oracle/filters/cic.hpp"
 
 namespace halflsb {
 namespace {
@@ -15,7 +17,10 @@ constexpr int any_bits = wide_bits - 1;
 DescribedChain with_every_word(DescribedChain chain) {
     for (DescribedStage& stage : chain.stages) {
         if (stage.accumulator_bits == wide_bits) stage.accumulator_bits = any_bits;
-        if (stage.state.bits == wide_bits) stage.state.bits = any_bits;
+        // Registers of a CIC that wrap are told for themselves.
+        const bool is_wrapping_cic =
+            std::holds_alternative<CicDecimator>(stage.stage.design) && stage.state.overflow == Overflow::wrap;
+        if (stage.state.bits == wide_bits && !is_wrapping_cic) stage.state.bits = any_bits;
         if (!stage.out.is_float && stage.out.word.bits == wide_bits) stage.out.word.bits = any_bits;
         if (!stage.in.is_float && stage.in.word.bits == wide_bits) stage.in.word.bits = any_bits;
     }
@@ -114,6 +119,32 @@ std::vector<PredictedNode> predict_nodes(const DescribedChain& described) {
         nodes.push_back(std::move(node));
     }
     return nodes;
+}
+
+std::vector<PredictedRegister> predict_registers(const DescribedChain& described) {
+    std::vector<PredictedRegister> all;
+    for (std::size_t i = 0; i < described.stages.size(); ++i) {
+        const DescribedStage& stage = described.stages[i];
+        std::vector<int> may_discard;
+        if (const auto* cic = std::get_if<CicDecimator>(&stage.stage.design)) {
+            const int finer = stage.in.word.fraction_bits - stage.out.word.fraction_bits;
+            may_discard = hogenauer_discards(*cic, std::ldexp(divisor_of(*cic), finer));
+        }
+        const std::vector<CicRegister> registers = cic_registers(stage);
+        for (std::size_t j = 0; j < registers.size(); ++j) {
+            const CicRegister& each = registers[j];
+            PredictedRegister told;
+            told.name = "stage " + std::to_string(i + 1) + ", " + each.name;
+            if (each.word.bits != wide_bits) told.bits = each.word.bits;
+            told.fraction_bits = each.word.fraction_bits;
+            told.overflow = each.word.overflow;
+            told.bits_needed = each.bits_needed;
+            told.discarded_bits = each.discarded_bits;
+            if (j < may_discard.size()) told.may_discard_bits = may_discard[j];
+            all.push_back(std::move(told));
+        }
+    }
+    return all;
 }
 
 std::vector<PredictedCoefficients> predict_coefficients(const DescribedChain& described) {

@@ -14,6 +14,9 @@ inline constexpr std::size_t most_signs = 4096;
 /// are among them, without bits.
 std::vector<PredictedNode> predict_nodes(const DescribedChain& described);
 
+/// Of each CIC of whole numbers: its integrators and combs in the order of the signal.
+std::vector<PredictedRegister> predict_registers(const DescribedChain& described);
+
 /// Of each stage that stores coefficients with a number of fraction bits that is said.
 std::vector<PredictedCoefficients> predict_coefficients(const DescribedChain& described);
 

@@ -3,10 +3,10 @@
 #include <algorithm>
 #include <cmath>
 
+#include "oracle/arithmetic/cic_registers.hpp"
 #include "oracle/arithmetic/family.hpp"
 #include "oracle/arithmetic/named_coefficients.hpp"
 #include "oracle/filters/coefficients.hpp"
-#include "oracle/filters/rates.hpp"
 #include "stimuli/number_text.hpp"
 
 namespace halflsb {
@@ -174,21 +174,6 @@ std::optional<Error> division_that_cannot_be(const DescribedStage& described) {
     return std::nullopt;
 }
 
-/// Hogenauer (1981), equation 11: what the registers must hold so that their wrapping cancels out.
-std::optional<Error> registers_too_narrow(const DescribedStage& described) {
-    int growth = -1;
-    if (const auto* decimator = std::get_if<CicDecimator>(&described.stage.design)) growth = growth_bits(*decimator);
-    if (const auto* interpolator = std::get_if<CicInterpolator>(&described.stage.design))
-        growth = growth_bits(*interpolator);
-    if (growth < 0 || described.state.bits == wide_bits || described.in.word.bits == wide_bits) return std::nullopt;
-    const int needed = described.in.word.bits + growth;
-    if (described.state.bits >= needed) return std::nullopt;
-    return refuse("state_bits",
-                  "registers of " + text_of(described.state.bits) + " bits are too narrow for " +
-                      text_of(described.in.word.bits) + "-bit samples that grow by " + text_of(growth) + " bits",
-                  "state_bits = " + text_of(needed) + " would do");
-}
-
 std::optional<Error> number_that_cannot_be(const DescribedStage& described) {
     if (described.number != NumberKind::integer || !(described.in.is_float || described.out.is_float))
         return std::nullopt;
@@ -205,7 +190,7 @@ std::optional<Error> contradiction_in(const DescribedStage& stage) {
     if (stage.number == NumberKind::float32) return std::nullopt;
     if (auto error = coefficient_outside(stage)) return error;
     if (auto error = accumulator_too_narrow(stage)) return error;
-    if (auto error = registers_too_narrow(stage)) return error;
+    if (auto error = registers_that_cannot_be(stage)) return error;
     return saving_without_loss(stage);
 }
 

@@ -62,11 +62,11 @@ void describe_state(DescribedStage& described) {
         described.state.fraction_bits =
             accumulator_fraction_bits_of(described, most_terms(described), described.out.word.fraction_bits);
     }
-    if (family_of(described.stage) == Family::cic)
-        described.state = {wide_bits, described.in.word.fraction_bits, Overflow::wrap};
+    const bool is_cic = family_of(described.stage) == Family::cic;
+    if (is_cic) described.state = {wide_bits, described.in.word.fraction_bits, Overflow::wrap};
     if (said.state_bits) described.state.bits = *said.state_bits;
-    if (said.state_fraction_bits) described.state.fraction_bits = *said.state_fraction_bits;
-    if (family_of(described.stage) != Family::cic) described.state.overflow = said.output_overflow;
+    if (said.state_fraction_bits && !is_cic) described.state.fraction_bits = *said.state_fraction_bits;
+    if (!is_cic) described.state.overflow = said.output_overflow;
     if (said.state_overflow) described.state.overflow = *said.state_overflow;
 }
 
@@ -99,6 +99,7 @@ DescribedStage described_stage(const FilterStage& stage, const Port& in, const P
     described.accumulator_bits = said.accumulator_bits.value_or(wide_bits);
     described.accumulator_overflow = said.accumulator_overflow.value_or(Overflow::wrap);
     described.accumulator_fraction_bits = said.accumulator_fraction_bits;
+    if (std::holds_alternative<CicDecimator>(stage.design)) described.discarded_bits = said.discarded_bits;
     describe_state(described);
     return described;
 }

@@ -52,6 +52,7 @@ struct DescribedStage {
     /// None: as many as the terms of each sum have, or as rounding_at says.
     std::optional<int> accumulator_fraction_bits;
     Word state;  ///< unused where the stage keeps only inputs; of transposed-2: bits and fraction as resolved
+    std::vector<int> discarded_bits;  ///< of a CIC decimator's registers (cic_registers.hpp); empty: none
     Division division = Division::divide;
     Summation summation = Summation::newest_first;
 

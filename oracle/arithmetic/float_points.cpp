@@ -189,13 +189,13 @@ private:
         return all + output.value() + (stage_.fused ? unit * b(0) * in_ : 0.0);
     }
 
-    /// Back to whole words: of real numbers.
+    /// Back to whole words.
     void add_output() {
         if (stage_.out.is_float || !element_.is_last_of_stage) return;
         const double step = step_of(stage_.out.word);
         RoundingPoint& point = push("output", Place::behind, 0.0, 1);
         point.step = step;
-        point.error = rounding_error(stage_.rounding, {unlimited, -unlimited, unlimited}).times(step);
+        point.error = rounding_error_of_inexact(stage_.rounding).times(step);
         point.variance_each = point.error.variance;
         error_out_ += step;
     }

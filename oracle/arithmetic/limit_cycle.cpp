@@ -28,7 +28,9 @@ std::optional<FilterNode> first_that_remembers(const std::vector<ChainElement>& 
     for (const ChainElement& element : elements) {
         // A running sum of float32 keeps what it has lost.
         const bool keeps_sum = !element.is_integer() && element.stage->structure == Structure::running_sum;
-        if (element.is_recursive() || element.stage->fraction_saving || keeps_sum) return element.node;
+        // Integrators that discard go round for ever: what they hold is not 0 when the input is.
+        const bool discards = !element.stage->discarded_bits.empty() && element.stage->discarded_bits.back() > 0;
+        if (element.is_recursive() || element.stage->fraction_saving || keeps_sum || discards) return element.node;
     }
     return std::nullopt;
 }

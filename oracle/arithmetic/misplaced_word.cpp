@@ -40,9 +40,10 @@ std::string structures_text(Family family) {
 }
 
 const std::vector<std::string_view> words_of_integers{
-    "rounding_at",          "fraction_saving", "coefficient_bits",    "accumulator_bits", "accumulator_fraction_bits",
-    "accumulator_overflow", "state_bits",      "state_fraction_bits", "state_overflow",   "output_rounding",
-    "feedback_coefficients"};
+    "rounding_at",      "fraction_saving",           "coefficient_bits",
+    "accumulator_bits", "accumulator_fraction_bits", "accumulator_overflow",
+    "state_bits",       "state_fraction_bits",       "state_overflow",
+    "discarded_bits",   "output_rounding",           "feedback_coefficients"};
 
 }  // namespace
 
@@ -51,6 +52,7 @@ bool has_word(const FilterStage& stage, std::string_view word) {
     const bool has_products = family != Family::average && family != Family::median && family != Family::cic;
     const bool has_states = has_products && family != Family::fir;
     if (family == Family::cic && (word == "state_bits" || word == "state_overflow")) return true;
+    if (word == "discarded_bits") return std::holds_alternative<CicDecimator>(stage.design);
     if (family == Family::median || family == Family::cic)
         return is_one_of(word, {"number", "rounding", "output_overflow", "stage_format"});
     if (is_one_of(word, {"state_bits", "state_fraction_bits", "state_overflow", "output_rounding"})) return has_states;
@@ -86,6 +88,10 @@ std::optional<Error> misplaced_word(const FilterStage& stage, const ParameterVal
         if (!is_float && word == "multiply_add") {
             return refuse(word, "multiply_add needs number = \"float32\"",
                           "give number = \"float32\", or leave it out");
+        }
+        if (word == "discarded_bits" && std::holds_alternative<CicInterpolator>(stage.design)) {
+            return refuse(word, "a cic-interpolator discards no bits: its integrators would add up what it lost",
+                          "leave it out");
         }
         if (!has_word(stage, word)) {
             const Lacking lacking = lacking_of(stage, word);

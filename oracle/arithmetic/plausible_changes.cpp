@@ -25,6 +25,7 @@ public:
                 roundings();
                 widths();
                 overflows();
+                registers();
                 coefficients();
             } else {
                 floats();
@@ -99,6 +100,13 @@ private:
         changed.state_bits = 32;
         changed.state_fraction_bits = declared_->state.fraction_bits;
         add("feedback before the output's overflow", changed);
+    }
+
+    void registers() {
+        if (declared_->discarded_bits.empty()) return;
+        StageArithmetic changed = said();
+        changed.discarded_bits.clear();
+        add("registers that discard nothing", changed);
     }
 
     void coefficients() {

@@ -3,7 +3,9 @@
 #include <algorithm>
 #include <cmath>
 
+#include "oracle/arithmetic/cic_registers.hpp"
 #include "oracle/arithmetic/reference_error.hpp"
+#include "oracle/filters/cic.hpp"
 
 namespace halflsb {
 
@@ -219,11 +221,20 @@ void RailElement::of_rate_changer(const FilterDesign& design) {
     };
     if (const auto* decimator = std::get_if<FirDecimator>(&design)) of_taps(decimator->taps);
     if (const auto* interpolator = std::get_if<FirInterpolator>(&design)) of_taps(interpolator->taps);
-    // Integrators that saturate never come back.
-    if (std::holds_alternative<CicDecimator>(design) && stage.state.overflow == Overflow::saturate &&
-        stage.state.bits != wide_bits) {
+    const auto* cic = std::get_if<CicDecimator>(&design);
+    if (cic == nullptr || stage.state.bits == wide_bits) return;
+    if (stage.state.overflow == Overflow::saturate) {
+        // Integrators that saturate never come back.
         add("registers", stage.state, {Source::sum}, HUGE_VAL, 0.0, RailEffect::lost);
         never_safe();
+    } else if (!stage.discarded_bits.empty()) {
+        // Registers that hold the last sum wrap and lose nothing; with what was discarded it may be a little larger.
+        Word last = stage.state;
+        last.bits -= stage.discarded_bits.back();
+        last.fraction_bits -= stage.discarded_bits.back();
+        points_over_gain_ = divisor_of(*cic);
+        add(name_of_cic_register(cic->order, 2 * cic->order), last, {Source::window}, sum_level_ * points_over_gain_,
+            sum_error_ * points_over_gain_, behind());
     }
 }
 

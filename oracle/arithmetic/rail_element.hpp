@@ -39,7 +39,7 @@ private:
         sum,          ///< before anything holds it
         held,         ///< the sum as a loop feeds it back
         input,        //
-        window,       ///< the sum of a moving average, not divided
+        window,       ///< the sum of a moving average or a CIC, not divided
         window_rest,  ///< less the oldest, before the newest comes
         state,        ///< of direct-2
         transposed,   ///< a state of transposed-2
@@ -93,7 +93,7 @@ private:
     std::vector<Rail> rails_;  ///< one for one with nodes_
     ElementFilter filter_;
     std::unique_ptr<Filter> state_filter_;  ///< of direct-2
-    double points_over_gain_ = 1.0;
+    double points_over_gain_ = 1.0;         ///< what such a sum is divided by
 
     std::size_t reach_back_ = 2;              ///< samples of the past that partial sums look at
     std::vector<double> in_, sums_, states_;  ///< with the past in front; states of a loop: what it holds

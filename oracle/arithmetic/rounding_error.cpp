@@ -81,6 +81,13 @@ RoundingError RoundingError::times(double factor) const {
     return scaled;
 }
 
+RoundingError rounding_error_of_inexact(std::optional<Rounding> rounding) {
+    if (!rounding) return {-1.0, 0.5, -1.0, 0.25, true, 0.25};
+    if (*rounding == Rounding::floor) return {-1.0, 0.0, -1.0, 0.0, true, 0.25};
+    if (*rounding == Rounding::toward_zero) return {-1.0, 1.0, -1.0, 1.0, true, 0.25};
+    return {-0.5, 0.5, -0.25, 0.25, true, 0.125};
+}
+
 RoundingError operator+(const RoundingError& a, const RoundingError& b) {
     return {a.lowest + b.lowest,
             a.highest + b.highest,

@@ -43,4 +43,9 @@ struct RoundedNumbers {
 /// half-up, that is floor(x + c) with a c of 0 .. 1/2: -1 .. 1/2, mean -1/2 .. 0.
 RoundingError rounding_error(std::optional<Rounding> rounding, const RoundedNumbers& numbers);
 
+/// Of numbers that are off by a little themselves, as floats are. They may crowd at multiples of some 1 / Q (a mean of
+/// whole numbers) and fall to either side of a whole number or a half one: at Q = 1 a floor is off by 0 or by -1, at
+/// Q = 2 a half-up by 0 or by either half. Mean and variance are the widest of all Q.
+RoundingError rounding_error_of_inexact(std::optional<Rounding> rounding);
+
 }  // namespace halflsb

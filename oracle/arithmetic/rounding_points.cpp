@@ -6,6 +6,7 @@
 #include <cmath>
 #include <limits>
 
+#include "oracle/arithmetic/cic_registers.hpp"
 #include "oracle/arithmetic/section_points.hpp"
 
 namespace halflsb {
@@ -92,10 +93,29 @@ private:
         here_.set_spare_out(here_.stage.state.fraction_bits - here_.state_spare);
     }
 
-    // A median errs where it takes a mean of two, a CIC where it leaves its registers.
+    // What a register no longer has is cut off, whatever the rounding of the stage.
+    void of_discards(const CicDecimator& cic) {
+        for (std::size_t k = 0; k < here_.stage.discarded_bits.size(); ++k) {
+            const int dropped = here_.stage.discarded_bits[k] - (k == 0 ? 0 : here_.stage.discarded_bits[k - 1]);
+            if (dropped == 0) continue;
+            const SumTarget target = here_.behind(name_of_cic_register(cic.order, static_cast<int>(k) + 1));
+            RoundingPoint point = here_.sums.point_at(target);
+            point.step = power_of_two(here_.stage.discarded_bits[k] - here_.stage.in.word.fraction_bits);
+            point.parts = power_of_two(dropped);
+            point.error = rounding_error(Rounding::floor, {point.parts, -unlimited, unlimited}).times(point.step);
+            point.variance_each = point.error.variance;
+            point.is_of_input = k == 0;
+            point.inside = path_from_register(cic, static_cast<int>(k) + 1);
+            here_.sums.points.push_back(std::move(point));
+        }
+    }
+
+    // A median errs where it takes a mean of two, a CIC where it leaves its registers and where these discard.
     void of_output_alone(const FilterDesign& design) {
         SumTarget target = here_.behind("output");
         int bits = here_.stage.in.word.fraction_bits - here_.stage.out.word.fraction_bits;
+        if (const auto* cic = std::get_if<CicDecimator>(&design)) of_discards(*cic);
+        if (!here_.stage.discarded_bits.empty()) bits -= here_.stage.discarded_bits.back();
         double parts = unlimited;
         if (const auto* median = std::get_if<Median>(&design)) {
             if (median->points % 2 == 0) ++bits;
@@ -136,7 +156,7 @@ std::vector<RoundingPoint> rounding_points(const DescribedChain& chain, const Ex
 }
 
 FilterChain path_of(const RoundingPoint& point, const FilterChain& chain) {
-    FilterChain path;
+    FilterChain path = point.inside;
     if (point.saves_fraction) path.push_back({Fir{{1.0, -1.0}}, std::nullopt});
     const FilterChain rest = point.place == RoundingPoint::Place::entry ? path_from_section(chain, point.node)
                                                                         : path_to_output(chain, point.node);

@@ -27,10 +27,11 @@ struct RoundingPoint {
     RoundingError error = {};     ///< of all of them in one sample, as values
     double variance_each = 0.0;   ///< of one of them, the largest
     bool is_float = false;        ///< errors of float32 operations: step is 2^-24 of the largest number
-    bool is_of_input = false;     ///< products of what comes in: of silence they lose nothing
+    bool is_of_input = false;     ///< what comes in, or products of it, is shortened: of silence nothing is lost
     bool saves_fraction = false;  ///< what is dropped goes into the next sum: the path has a factor 1 - z^-1
     FilterChain from_input = {};  ///< from the chain's input to the number that is shortened, but for:
     double factor = 1.0;          ///< of a product its smallest coefficient
+    FilterChain inside = {};      ///< what the error passes before it comes out at the node: registers of a CIC
 };
 
 /// In the order of the signal. Stages of float32 have none here (float_points.hpp). Fewer remainders count where the

@@ -56,6 +56,7 @@ void StageSums::find_spare_of_state(const std::vector<double>& forward, const st
     if (stage.structure != Structure::leak) bits = stage.accumulator_fraction_bits.value_or(bits);
     if (stage.structure == Structure::transposed_2) {
         bits = std::max(bits_of_products(forward, in_bits()), bits_of_products(fed_back, stage.out.word.fraction_bits));
+        bits = std::min(bits, stage.accumulator_fraction_bits.value_or(bits));
     }
     state_spare = std::max(0, state.fraction_bits - bits);
 }

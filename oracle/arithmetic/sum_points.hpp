@@ -38,13 +38,14 @@ public:
     void add_shortening(const SumTarget& target, const RoundedNumbers& numbers);
     /// A product that is shortened by itself and then added (sign 1) or subtracted (-1).
     void add_product(const Term& product, const SumTarget& target, double sign);
+    /// Named and placed, without an error.
+    RoundingPoint point_at(const SumTarget& target) const;
 
     std::vector<RoundingPoint> points;
 
 private:
     bool is_known() const { return stage_.rounding_is_said && stage_.coefficients_are_said; }
     std::optional<Rounding> rounding_of(const SumTarget& target) const;
-    RoundingPoint point_at(const SumTarget& target) const;
     void add_products(const std::vector<Term>& terms, const SumTarget& target, int accumulator, bool of_feedback);
     RoundedNumbers numbers_of(const std::vector<Term>& terms, int accumulator, int target_bits) const;
 

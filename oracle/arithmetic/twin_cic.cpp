@@ -1,7 +1,9 @@
-// CIC decimators and interpolators as firmware has them: integrators and combs in registers of one width.
+// CIC decimators and interpolators as firmware has them: integrators and combs in registers that end at one top bit.
 //
 // Registers that wrap and hold the last comb lose nothing (E. B. Hogenauer, "An economical class of digital filters
-// for decimation and interpolation", 1981). Where nobody said a width, they have just that.
+// for decimation and interpolation", 1981) but what a decimator discards at their low ends. Where nobody said a width,
+// they have just that.
+#include "oracle/arithmetic/cic_registers.hpp"
 #include "oracle/arithmetic/history.hpp"
 #include "oracle/arithmetic/kept_samples.hpp"
 #include "oracle/arithmetic/quotient.hpp"
@@ -15,8 +17,17 @@ namespace {
 struct CicPlan {
     std::size_t order = 1, factor = 2, delay = 1;
     bool decimates = true;
-    std::size_t phase = 0;  ///< of what decimates
-    Word registers;
+    std::size_t phase = 0;       ///< of what decimates
+    Word registers;              ///< of one that discards nothing
+    std::vector<int> discarded;  ///< low bits that integrators, then combs no longer have; one each
+
+    Word word(std::size_t j) const {
+        Word word = registers;
+        word.bits -= discarded[j];
+        word.fraction_bits -= discarded[j];
+        return word;
+    }
+    int dropped_before(std::size_t j) const { return discarded[j] - (j == 0 ? 0 : discarded[j - 1]); }
 };
 
 class CicTwin final : public StageTwin {
@@ -24,15 +35,17 @@ public:
     CicTwin(const CicPlan& plan, const Quotient& quotient, const Word& out, const std::string& name)
         : plan_(plan),
           quotient_(quotient),
-          last_(name + (plan.decimates ? "comb " : "integrator ") + std::to_string(plan.order), plan.registers),
+          last_(name + (plan.decimates ? "comb " : "integrator ") + std::to_string(plan.order),
+                plan.word(2 * plan.order - 1)),
           output_(name + "output", out),
           integrals_(plan.order, 0),
           past_(plan.order, History<std::int64_t>(plan.delay)),
           kept_({plan.factor, plan.phase}) {
         for (std::size_t k = 1; k <= plan.order; ++k) {
-            integrators_.emplace_back(name + "integrator " + std::to_string(k), plan.registers);
-            combs_.emplace_back(name + "comb " + std::to_string(k), plan.registers);
+            integrators_.emplace_back(name + "integrator " + std::to_string(k), plan.word(k - 1));
+            combs_.emplace_back(name + "comb " + std::to_string(k), plan.word(plan.order + k - 1));
         }
+        for (std::size_t j = 0; j < 2 * plan.order; ++j) drops_.push_back(plan.dropped_before(j));
     }
 
     void reset() override {
@@ -76,12 +89,14 @@ public:
     bool take_state(std::span<const std::int64_t>& state) override {
         const std::size_t combs = plan_.order * plan_.delay;
         if (state.size() < plan_.order + combs + (plan_.decimates ? 1 : 0)) return false;
-        for (const std::int64_t word : state.first(plan_.order + combs)) {
-            if (!integrators_.front().holds(word)) return false;
-        }
         for (std::size_t k = 0; k < plan_.order; ++k) {
+            const auto past = state.subspan(plan_.order + k * plan_.delay, plan_.delay);
+            if (!integrators_[k].holds(state[k])) return false;
+            for (const std::int64_t word : past) {
+                if (!combs_[k].holds(word)) return false;
+            }
             integrals_[k] = state[k];
-            past_[k].set(state.subspan(plan_.order + k * plan_.delay, plan_.delay));
+            past_[k].set(past);
         }
         state = state.subspan(plan_.order + combs);
         if (!plan_.decimates) return true;
@@ -105,13 +120,14 @@ public:
 private:
     Int128 integrated(Int128 number) {
         for (std::size_t k = 0; k < plan_.order; ++k) {
-            number = integrals_[k] = integrators_[k].hold(integrals_[k] + number);
+            number = integrals_[k] = integrators_[k].hold(integrals_[k] + (number >> drops_[k]));
         }
         return number;
     }
     Int128 combed(Int128 number) {
         for (std::size_t k = 0; k < plan_.order; ++k) {
             const Int128 before = past_[k].ago(plan_.delay);
+            number >>= drops_[plan_.order + k];
             past_[k].push(static_cast<std::int64_t>(number));
             number = combs_[k].hold(number - before);
         }
@@ -126,6 +142,7 @@ private:
     Quotient quotient_;
     std::vector<Register<Int128>> integrators_, combs_;
     Register<Int128> last_, output_;  ///< last: what the last register holds, after its wrap
+    std::vector<int> drops_;          ///< low bits that go before each integrator, then each comb
     std::vector<Int128> integrals_;
     std::vector<History<std::int64_t>> past_;  ///< what went into each comb
     KeptSamples kept_;
@@ -134,19 +151,22 @@ private:
 template <class Cic>
 std::unique_ptr<StageTwin> make(const DescribedStage& stage, const Cic& design, bool decimates,
                                 const std::string& name) {
-    const int integer_bits = stage.in.word.bits + growth_bits(design);
     CicPlan plan{static_cast<std::size_t>(design.order),
                  static_cast<std::size_t>(design.factor),
                  static_cast<std::size_t>(design.delay_samples),
                  decimates,
                  static_cast<std::size_t>(phase_samples_of(design)),
-                 stage.state};
+                 stage.state,
+                 stage.discarded_bits};
     // Saturation never comes where nobody limited the registers.
-    if (stage.state.bits == wide_bits) plan.registers = {integer_bits, stage.in.word.fraction_bits, Overflow::wrap};
+    if (stage.state.bits == wide_bits)
+        plan.registers = {cic_register_bits(stage), stage.in.word.fraction_bits, Overflow::wrap};
     if (plan.registers.bits > 64) return nullptr;
-    Division128 division{.up = stage.out.word.fraction_bits - plan.registers.fraction_bits,
+    if (plan.discarded.empty()) plan.discarded.assign(2 * plan.order, 0);
+    const Word last = plan.word(2 * plan.order - 1);
+    Division128 division{.up = stage.out.word.fraction_bits - last.fraction_bits,
                          .rounding = stage.rounding,
-                         .largest_number = largest_number(plan.registers)};
+                         .largest_number = largest_number(last)};
     if (design.shift_bits) {
         division.up -= *design.shift_bits;
     } else {

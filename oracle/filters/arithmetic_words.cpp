@@ -63,6 +63,13 @@ const Recipe& arithmetic_recipe() {
             bits("state_fraction_bits", 0.0, 126.0, "Its fraction bits; those of the output words when left out."),
             one_of_words("state_overflow", words_of<Overflow>(),
                          "What becomes of a state beyond its ends; as output_overflow when left out."),
+            {.name = "discarded_bits",
+             .type = ParameterType::integers,
+             .unit = "bits",
+             .minimum = 0.0,
+             .maximum = 62.0,
+             .help = "Of a CIC decimator: low bits that each integrator, then each comb no longer has, counted from "
+                     "the LSB of the input; none when left out."},
             {.name = "output_overflow",
              .type = ParameterType::choice,
              .choices = words_of<Overflow>(),

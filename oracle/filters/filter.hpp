@@ -100,7 +100,7 @@ std::vector<double> impulse_response(const FilterChain& chain, std::size_t lengt
 /// Some 40 time constants of the slowest pole are run, at most 2^24 samples; what would come after
 /// those (poles within 2e-6 of the unit circle) is added as the rest of a geometric series. Where the rate changes, of
 /// the output phase that has the most. An upper bound instead, the product of stretches of the chain, around a median
-/// and where the rate cycle is longer than 4096 samples.
+/// and where the rate cycle is longer than 4096 samples or its responses take minutes (multirate_norms.hpp).
 double l1_norm(const FilterChain& chain, double tail = 1e-12);
 /// How many zeros it takes until nothing is left of what went before. The first sample after N zeros stands N + 1
 /// samples behind the newest of the past, so it is the smallest N with
@@ -110,7 +110,7 @@ double l1_norm(const FilterChain& chain, double tail = 1e-12);
 /// are in the output's unit and positive. nullopt: no N up to 2^24 could be proven to do. The same N on every machine.
 /// Runs twice over about 3 N samples of the chain.
 /// Enough, though perhaps not the smallest, where the rate changes (then a multiple of the rate cycle's inputs, none
-/// where that is beyond 4096 or more than 2^20 zeros would be needed) and around a median.
+/// where that is beyond 4096, takes minutes, or more than 2^20 zeros would be needed) and around a median.
 std::optional<std::int64_t> flush_samples(const FilterChain& chain, double full_scale, double half_step);
 /// The largest pole radius of the chain, each stage at its own rate; 0 where nothing is fed back.
 double largest_pole_radius(const FilterChain& chain);

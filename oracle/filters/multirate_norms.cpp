@@ -15,6 +15,29 @@ constexpr std::int64_t longest_cycle = 4096;
 constexpr std::int64_t most_samples = std::int64_t{1} << 20;
 constexpr double slack = 0x1p-20;
 
+/// Runs of a chain's responses, counted in samples of its fastest stage. Every stage alone stays below the most (a CIC
+/// of factor 4096, order 8 and delay 2: 2.9e8); beyond it seconds would become minutes: 3105 responses behind a rise by
+/// 3812 take 1e11. A piece is kept, so no chain may rise further than its 2^24 samples allow.
+class Work {
+public:
+    Work(const FilterChain& chain, std::int64_t responses) {
+        double rate = 1.0, fastest = 1.0;
+        for (const FilterStage& stage : chain) fastest = std::max(fastest, rate = output_rate_hz(stage, rate));
+        a_piece_ = fastest * static_cast<double>(ImpulseRun::piece_samples);
+        // Response k has k zeros in front of it: half of them all on average.
+        const double least =
+            static_cast<double>(responses) * std::max(0.5 * static_cast<double>(responses) * fastest, a_piece_);
+        is_too_much_ = a_piece_ > largest_piece || least > most;
+    }
+    void add_piece() { is_too_much_ = is_too_much_ || (done_ += a_piece_) > most; }
+    bool is_too_much() const { return is_too_much_; }
+
+private:
+    static constexpr double most = 0x1p29, largest_piece = 0x1p24;
+    double a_piece_ = 0.0, done_ = 0.0;
+    bool is_too_much_ = false;
+};
+
 // The product over single stages: no output is larger, whatever the phases.
 double product_of_norms(const FilterChain& chain, double tail) {
     double product = 1.0;
@@ -27,6 +50,8 @@ double product_of_norms(const FilterChain& chain, double tail) {
 std::optional<PhaseSums> sums_of_changing_rate(const FilterChain& chain, double tail) {
     const RateCycle cycle = rate_cycle(chain);
     if (cycle.inputs > longest_cycle || cycle.outputs > most_samples) return std::nullopt;
+    Work work(chain, cycle.inputs);
+    if (work.is_too_much()) return std::nullopt;
     std::vector<double> above(static_cast<std::size_t>(cycle.outputs), 0.0), below = above;
     double rest = 0.0;
     ImpulseRun run(chain);
@@ -41,7 +66,8 @@ std::optional<PhaseSums> sums_of_changing_rate(const FilterChain& chain, double 
                 if (++phase == above.size()) phase = 0;
             }
             if (run.rest() <= tail * sum) break;
-            if (done > input + most_samples) return std::nullopt;
+            work.add_piece();
+            if (done > input + most_samples || work.is_too_much()) return std::nullopt;
         }
         rest += run.rest();
     }
@@ -65,6 +91,8 @@ double l1_of_changing_rate(const FilterChain& chain, double tail) {
 std::optional<std::int64_t> flush_of_changing_rate(const FilterChain& chain, double limit) {
     const RateCycle cycle = rate_cycle(chain);
     if (cycle.inputs > longest_cycle || cycle.outputs > most_samples) return std::nullopt;
+    Work work(chain, cycle.inputs);
+    if (work.is_too_much()) return std::nullopt;
     std::vector<double> largest;  // weight of an input that is `index` samples older than the newest one
     double rest = 0.0;
     ImpulseRun run(chain);
@@ -72,7 +100,8 @@ std::optional<std::int64_t> flush_of_changing_rate(const FilterChain& chain, dou
         run.restart(static_cast<std::size_t>(input));
         std::int64_t done = 0, output = 0;
         do {
-            if (done > input + 2 * most_samples) return std::nullopt;
+            work.add_piece();
+            if (done > input + 2 * most_samples || work.is_too_much()) return std::nullopt;
             const std::span<const double> piece = run.next();
             std::int64_t newest = done;  // input with which the next output comes
             for (const double h : piece) {

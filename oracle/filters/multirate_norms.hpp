@@ -17,7 +17,8 @@ struct PhaseSums {
     double positive = 0.0, negative = 0.0;  ///< of those above 0, and below it
 };
 /// Until what is left of each response is below `tail` of its size; the rest counts as either sign. nullopt where the
-/// rate cycle is longer than 4096 samples, or a response than 2^20.
+/// rate cycle is longer than 4096 samples, a response than 2^20, all of them together than 2^29 samples of the fastest
+/// stage (seconds), or where the rate rises by more than 2^14.
 std::optional<PhaseSums> sums_of_changing_rate(const FilterChain& chain, double tail);
 
 /// Of the output phase whose weights have the largest sum; the product of the stages' where those sums are not known.

@@ -73,6 +73,11 @@ Outcome<StageArithmetic> make_arithmetic(const ParameterValues& values, const St
     take(values, "state_bits", made.state_bits);
     take(values, "state_fraction_bits", made.state_fraction_bits);
     take(values, "state_overflow", made.state_overflow);
+    if (values.has("discarded_bits")) {
+        made.discarded_bits.clear();
+        for (const double bits : values.numbers("discarded_bits"))
+            made.discarded_bits.push_back(static_cast<int>(bits));
+    }
     take(values, "division", made.division);
     take(values, "multiply_add", "fused", made.fused_multiply_add);
     take(values, "summation", made.summation);

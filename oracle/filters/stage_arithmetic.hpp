@@ -71,6 +71,9 @@ struct StageArithmetic {
     std::optional<int> state_bits = {};  ///< of what is kept from sample to sample, beside inputs
     std::optional<int> state_fraction_bits = {};
     std::optional<Overflow> state_overflow = {};
+    /// Of a CIC decimator, one for each integrator, then each comb: low bits of the input's LSB and up that the
+    /// register no longer has, all that came before it counted in (Hogenauer 1981, B_1 .. B_2N). Empty: none.
+    std::vector<int> discarded_bits = {};
     std::optional<Division> division = {};
     std::optional<bool> fused_multiply_add = {};
     std::optional<Summation> summation = {};

@@ -4,6 +4,7 @@
 #include <utility>
 
 #include "rigs/filters/cic.h"
+#include "rigs/filters/cic_pruned.h"
 #include "rigs/filters/coefficients/droop.h"
 #include "rigs/filters/coefficients/quarter.h"
 #include "rigs/filters/coefficients/triple.h"
@@ -72,6 +73,12 @@ std::vector<FilterParts> rate_filters() {
         [](cic_q15& s) { cic_q15_init(&s, sharp_order, eighth, sharp_shift); },
         [](cic_q15& s, const std::int16_t* in, std::int16_t* out, std::uint16_t count) {
             return cic_decimator_q15_process(&s, in, out, count);
+        }));
+    filters.push_back(parts_of<cic_pruned_q15>(
+        "belt-pruned", "CIC decimator, order 4, returns with the last of 16, ever shorter registers", 1,
+        CIC_PRUNED_FACTOR, [](cic_pruned_q15& s) { cic_pruned_q15_reset(&s); },
+        [](cic_pruned_q15& s, const std::int16_t* in, std::int16_t* out, std::uint16_t count) {
+            return cic_pruned_q15_process(&s, in, out, count);
         }));
     filters.push_back(parts_of<cic_q15>(
         "belt-fourfold", "CIC interpolator, order 2, 4 for each, floors", quarter, 1,

@@ -100,13 +100,22 @@ Json silence_json(const PredictedSilence& silence) {
 
 Json arithmetic_json(const PredictedArithmetic& told) {
     Json assumed = Json::array(), terms = Json::array(), cases = Json::array(), nodes = Json::array(),
-         coefficients = Json::array();
+         registers = Json::array(), coefficients = Json::array();
     for (const PredictedAssumption& stage : told.assumed)
         assumed.push_back({{"stage", stage.stage}, {"taken", stage.taken}});
     for (const PredictedTerm& term : told.terms) terms.push_back(term_json(term));
     for (const PredictedCaseError& one : told.cases)
         cases.push_back({{"name", one.name}, {"samples", one.samples}, {"error", predicted_error_json(one.error)}});
     for (const PredictedNode& node : told.nodes) nodes.push_back(node_json(node));
+    for (const PredictedRegister& one : told.registers) {
+        registers.push_back({{"register", one.name},
+                             {"bits", count_json(one.bits)},
+                             {"fraction_bits", one.fraction_bits},
+                             {"overflow", name_of(one.overflow)},
+                             {"bits_needed", one.bits_needed},
+                             {"discarded_bits", one.discarded_bits},
+                             {"may_discard_bits", count_json(one.may_discard_bits)}});
+    }
     for (const PredictedCoefficients& stage : told.coefficients) {
         coefficients.push_back({{"stage", stage.stage},
                                 {"fraction_bits", stage.fraction_bits},
@@ -120,6 +129,7 @@ Json arithmetic_json(const PredictedArithmetic& told) {
             {"error", predicted_error_json(told.error)},
             {"cases", std::move(cases)},
             {"nodes", std::move(nodes)},
+            {"registers", std::move(registers)},
             {"coefficients", std::move(coefficients)},
             {"silence", told.silence ? silence_json(*told.silence) : Json(nullptr)}};
 }

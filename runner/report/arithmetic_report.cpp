@@ -74,6 +74,35 @@ std::string cases_text(const std::vector<PredictedCaseError>& cases, const Figur
     return text;
 }
 
+std::string registers_text(const std::vector<PredictedRegister>& registers, const TextStyle& style) {
+    if (registers.empty()) return "";
+    Table table{{{"register of a CIC", false, 0},
+                 {"bits", true, 0},
+                 {"fraction", true, 2},
+                 {"bits needed", true, 0},
+                 {"discarded", true, 1},
+                 {"may discard", true, 3}},
+                {},
+                2};
+    bool wraps = false, has_rule = false;
+    for (const PredictedRegister& one : registers) {
+        wraps = wraps || one.overflow == Overflow::wrap;
+        has_rule = has_rule || one.may_discard_bits;
+        table.rows.push_back({one.name, one.bits ? std::to_string(*one.bits) : "any", std::to_string(one.fraction_bits),
+                              std::to_string(one.bits_needed), std::to_string(one.discarded_bits),
+                              one.may_discard_bits ? std::to_string(*one.may_discard_bits) : "-"});
+    }
+    std::string text = laid_out(style, table);
+    if (wraps) text += wrapped(style, "what wraps inside a CIC comes back while each register has the bits needed", 2);
+    if (has_rule) {
+        text += wrapped(style,
+                        "may discard: low bits from the LSB of the input, by Hogenauer's rule (1981): all such errors "
+                        "together have the variance of the output's rounding",
+                        2);
+    }
+    return text;
+}
+
 }  // namespace
 
 std::string unit_text(const Signal& signal) { return signal.output.has_lsb() ? " LSB" : ""; }
@@ -166,6 +195,7 @@ std::string headroom_text(const PredictedArithmetic& told, const TextStyle& styl
                         "many samples; the signs are in the answer of --json",
                         2);
     }
+    text += registers_text(told.registers, style);
     for (const PredictedCoefficients& stage : told.coefficients) {
         text += "  coefficients of stage " + std::to_string(stage.stage) + ": " + std::to_string(stage.bits_needed) +
                 " bits needed at " + std::to_string(stage.fraction_bits) + " fraction bits" +

@@ -89,6 +89,17 @@ struct PredictedNode {
     double reached = 0.0;
 };
 
+/// Of a CIC: what wraps in one comes back in the others, so no level tells how wide it must be.
+struct PredictedRegister {
+    std::string name;         ///< "stage 1, integrator 2"
+    std::optional<int> bits;  ///< none: the plan does not say, as many as it takes
+    int fraction_bits = 0;
+    Overflow overflow = Overflow::wrap;
+    int bits_needed = 0;
+    int discarded_bits = 0;               ///< low bits that it does not have, counted from the LSB of the input
+    std::optional<int> may_discard_bits;  ///< by Hogenauer's rule, of a decimator
+};
+
 struct PredictedCoefficients {
     std::size_t stage = 0;  ///< from 1
     int fraction_bits = 0, bits_needed = 0;
@@ -120,6 +131,7 @@ struct PredictedArithmetic {
     double reference_error = 0.0;           ///< of double precision, in `error`
     std::vector<PredictedCaseError> cases;  ///< those whose error is another one
     std::vector<PredictedNode> nodes;
+    std::vector<PredictedRegister> registers;
     std::vector<PredictedCoefficients> coefficients;
     std::optional<PredictedSilence> silence;  ///< none of a float32 output
 };

@@ -54,6 +54,7 @@ class Stage:
     division: str
     fused: bool
     summation: str
+    discarded_bits: list | None
 
     @property
     def state_bits(self):
@@ -114,7 +115,7 @@ def made_stage(kind, words, arithmetic, source, target):
         said("accumulator_bits", AS_MANY_AS_IT_TAKES), said("accumulator_overflow", "wrap"), said("accumulator_fraction_bits"), said("rounding_at", "sum"),
         said("fraction_saving", "off") == "on", fraction_bits, said("coefficient_rounding", "half-away"),
         said("feedback_coefficients", "added"), said("state_bits"), said("state_fraction_bits"), said("state_overflow"),
-        said("division", "divide"), said("multiply_add", "separate") == "fused", said("summation", "newest-first"))  # fmt: skip
+        said("division", "divide"), said("multiply_add", "separate") == "fused", said("summation", "newest-first"), said("discarded_bits"))  # fmt: skip
 
 
 def made_filter(stage):

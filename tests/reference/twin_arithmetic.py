@@ -49,12 +49,16 @@ def average_words(said, words, source, target):
     return said
 
 
-def cic_words(said, words, source, target):
+def cic_words(said, kind, words, source, target):
     growth = math.ceil(words["order"] * math.log2(words["factor"] * words["delay_samples"])) + 1
     needed = max(source.bits + growth, target.bits)
     if said.draw.chance(0.5) and needed <= MOST_BITS:
         said["state_bits"] = said.draw.whole(needed, MOST_BITS)
         said.maybe(0.3, "state_overflow", ["wrap"])
+    if kind == "cic-decimator" and said.draw.chance(0.6):
+        steps = [said.draw.one_of([0, 0, 1, 2, 3]) for _ in range(2 * words["order"])]
+        if sum(steps) <= source.bits + growth - 4:
+            said["discarded_bits"] = [sum(steps[: j + 1]) for j in range(len(steps))]
     return said
 
 
@@ -189,7 +193,7 @@ def integer_arithmetic(draw, kind, words, source, target):
     if kind == "median":
         return said
     if kind.startswith("cic"):
-        return cic_words(said, words, source, target)
+        return cic_words(said, kind, words, source, target)
     if kind == "moving-average":
         return average_words(said, words, source, target)
     return Recursion(said, kind, words, source, target).drawn()

@@ -267,7 +267,7 @@ class Median:
 
 
 class Cic:
-    """Both ways; the registers keep the fraction bits of x."""
+    """Both ways; register j keeps the fraction bits of x but the `lost[j]` lowest, which are cut off as a number enters."""
 
     def __init__(self, stage):
         self.stage, words = stage, stage.words
@@ -280,24 +280,32 @@ class Cic:
         self.integrators = [0] * self.order
         self.combs = [deque([0] * self.delay, self.delay) for _ in range(self.order)]
         self.index = -1
+        self.lost = (self.down and stage.discarded_bits) or [0] * (2 * self.order)
 
-    def hold(self, number):
-        return held(number, self.stage.said_state_bits or AS_MANY_AS_IT_TAKES, self.stage.said_state_overflow or "wrap")
+    def hold(self, number, register):
+        bits = self.stage.said_state_bits
+        bits = bits - self.lost[register] if bits else AS_MANY_AS_IT_TAKES
+        return held(number, bits, self.stage.said_state_overflow or "wrap")
+
+    def entering(self, value, register):
+        """Counted in steps of the register before it; afterwards in its own."""
+        steps = 2 ** (self.lost[register] - (self.lost[register - 1] if register else 0))
+        return value // steps
 
     def integrated(self, value):
         for k in range(self.order):
-            value = self.integrators[k] = self.hold(self.integrators[k] + value)
+            value = self.integrators[k] = self.hold(self.integrators[k] + self.entering(value, k), k)
         return value
 
     def combed(self, value):
-        for comb in self.combs:
-            oldest = comb[-1]
-            comb.appendleft(value)
-            value = self.hold(value - oldest)
+        for register, comb in enumerate(self.combs, self.order):
+            newest, oldest = (self.entering(value, register) if self.down else value), comb[-1]
+            comb.appendleft(newest)
+            value = self.hold(newest - oldest, register)
         return value
 
     def short(self, value):
-        more = self.stage.output.fraction - self.stage.input.fraction
+        more = self.stage.output.fraction - (self.stage.input.fraction - self.lost[-1])
         return self.stage.out(divided(value << max(more, 0), self.divisor << max(-more, 0), self.stage.rounding))
 
     def step(self, x):

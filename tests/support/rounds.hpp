@@ -1,4 +1,4 @@
-// How often a random test draws. A round costs some forty times as much under the sanitizers at -O0, and they look for
+// How often a random test draws. A round costs many times as much under the sanitizers at -O0, and they look for
 // what a hundred rounds show as well as a thousand: unless HALFLSB_FULL_COUNTS is set, as tests/run long does, they
 // draw a tenth. Every other build draws all.
 #pragma once

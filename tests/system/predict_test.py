@@ -208,6 +208,41 @@ rounding = "{rounding}"
         self.assertEqual(answers["floor in place of half-up"], ("seen", "error"))
         self.assertEqual(answers["half-even in place of half-up"], ("unseen", None))
 
+    def cic_plan(self, words, factor=25, shift=19):
+        return self.plan(STEP, rules="[[rule]]\nkind = \"error\"\nmax_lsb = \"derived\"\n", filter_text=f"""[[filter]]
+kind = "cic-decimator"
+order = 4
+factor = {factor}
+shift_bits = {shift}
+[filter.arithmetic]
+rounding = "floor"
+{words}
+""")
+
+    def test_the_registers_of_a_cic_are_told_with_the_width_that_each_must_have(self):
+        # Hogenauer's example: N = 4, R = 25, 16 bits in and out; 35 bits, discards as tests/published/cic-bit-growth.csv has them.
+        may_discard = [1, 6, 9, 13, 14, 15, 16, 17]
+        (filter_told,) = self.predict(self.cic_plan("state_bits = 40"))["filters"]
+        told = filter_told["arithmetic"]["registers"]
+        names = [f"stage 1, {kind} {k}" for kind in ("integrator", "comb") for k in range(1, 5)]
+        self.assertEqual([one["register"] for one in told], names)
+        self.assertEqual({(one["bits"], one["bits_needed"], one["fraction_bits"], one["overflow"]) for one in told}, {(40, 35, 15, "wrap")})
+        self.assertEqual([one["may_discard_bits"] for one in told], may_discard)
+        (filter_told,) = self.predict(self.cic_plan(f"discarded_bits = {may_discard}"))["filters"]
+        told = filter_told["arithmetic"]["registers"]
+        self.assertEqual([one["bits_needed"] for one in told], [34, 29, 26, 22, 21, 20, 19, 18])
+        self.assertEqual({one["bits"] for one in told}, {None})
+        self.assertEqual([one["discarded_bits"] for one in told], may_discard)
+        out = halflsb("predict", self.cic_plan("state_bits = 40")).out
+        self.assertIn("  stage 1, integrator 1    40        15           35          0            1\n", out)
+        self.assertIn("what wraps inside a CIC comes back while each register has the bits needed", out)
+
+    def test_a_last_comb_without_room_for_what_is_discarded_is_told(self):
+        discards = [1, 4, 7, 10, 11, 12, 13, 14]
+        plan = self.cic_plan(f"state_bits = 32\ndiscarded_bits = {discards}", 16, 16)
+        self.write("plan.toml", plan.read_text().replace("length_samples = 600", "length_samples = 608"))
+        self.assertIn("stage 1, comb 4 reaches its rail; derived limits leave out the samples", halflsb("predict", plan).out)
+
     def test_a_recursion_of_high_order_is_warned_of(self):
         b, a = scipy_signal.butter(10, 0.02)
         numbers = [", ".join(repr(float(v)) for v in list_) for list_ in (b, a)]

@@ -238,7 +238,7 @@ class UsbSerial(unittest.TestCase):
         self.assertIn("the port is gone: it was unplugged", done.text)
         record = self.record()
         self.assertEqual([(case["name"], case["verdict"]) for case in record["verdict"]["cases"]], [("step", "pass"), ("long", "invalid")])
-        self.assertIn("unplugged", json.dumps(record["cases"][1]))
+        self.assertIn("unplugged", json.dumps(record["verdict"]["cases"][1]["invalid"]))
         kept = machine.run(f"ls {self.out}/captures").out.split()
         self.assertEqual(len(kept), 2, "the capture of the finished case, and what came of the other")
         print(f"an unplug ended the run after {took_s:.2f} s", flush=True)

@@ -89,6 +89,13 @@ TEST_CASE("described: transposed-2 keeps the whole accumulator, direct-2 the out
     CHECK(second.stages[0].state == Word{16, 15, Overflow::wrap});
 }
 
+TEST_CASE("described: registers of a cic have the fraction bits of its input, whatever another stage keeps") {
+    const auto cic =
+        stage("cic-decimator", {{"order", whole(2)}, {"factor", whole(4)}},
+              {{"rounding", std::string("floor")}, {"state_bits", whole(32)}, {"state_fraction_bits", whole(20)}});
+    CHECK(described({cic}).stages[0].state == Word{32, 15, Overflow::wrap});
+}
+
 TEST_CASE("described: ports count in values of the input, whatever the formats") {
     const auto average = stage("moving-average", {{"points", whole(4)}}, {{"rounding", std::string("floor")}});
     const auto offset = described({average}, "u12", "i16");

@@ -42,6 +42,13 @@ TEST_CASE("plausible changes: a CIC and a median have no sum and no product to d
     CHECK(changes_of(Median{4}, floor_arithmetic()) == with(other_roundings, {"an output that wraps"}));
 }
 
+TEST_CASE("plausible changes: registers of a CIC that discard may as well keep all", "[arithmetic]") {
+    StageArithmetic arithmetic = floor_arithmetic();
+    arithmetic.discarded_bits = {0, 3, 4, 5, 6, 7};
+    CHECK(changes_of(CicDecimator{3, 8, 1, 9}, arithmetic) ==
+          with(other_roundings, {"an output that wraps", "registers that discard nothing"}));
+}
+
 TEST_CASE("plausible changes: a FIR may shorten products, save the fraction, and sum in a narrower word",
           "[arithmetic]") {
     StageArithmetic arithmetic = floor_arithmetic();

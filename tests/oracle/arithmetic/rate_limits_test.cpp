@@ -1,7 +1,9 @@
 // Chains that change the rate: no twin leaves its derived limits where these claim to hold, whatever the phase.
+#include "oracle/arithmetic/cic_registers.hpp"
 #include "oracle/arithmetic/declared.hpp"
 #include "oracle/arithmetic/error_bound.hpp"
 #include "oracle/arithmetic/rail_watch.hpp"
+#include "oracle/filters/cic.hpp"
 #include "oracle/filters/rates.hpp"
 #include "tests/oracle/arithmetic/random_description.hpp"
 #include "tests/oracle/arithmetic/stimulus_words.hpp"
@@ -16,6 +18,23 @@ std::vector<double> random_taps(Random& random, std::int64_t count) {
     std::vector<double> taps{0.5 * scale};
     while (static_cast<std::int64_t>(taps.size()) < count) taps.push_back(scale * random.ratio());
     return taps;
+}
+
+/// Half of them as Hogenauer's rule has it, the others whatever grows; registers as wide as nothing discarded needs, or
+/// as it takes.
+void random_discards(Random& random, FilterStage& stage) {
+    const auto& cic = std::get<CicDecimator>(stage.design);
+    std::vector<int>& discarded = stage.arithmetic.discarded_bits;
+    if (chance(random, 50)) {
+        discarded = hogenauer_discards(cic, divisor_of(cic));
+    } else {
+        int bits = 0;
+        for (int j = 0; j < 2 * cic.order; ++j) {
+            if (chance(random, 50)) bits += static_cast<int>(random.whole(0, 2));
+            discarded.push_back(bits);
+        }
+    }
+    if (chance(random, 70)) stage.arithmetic.state_bits = 16 + growth_bits(cic);
 }
 
 FilterStage random_rate_changer(Random& random) {
@@ -62,6 +81,7 @@ DescribedChain random_rate_chain(Random& random, bool is_narrow) {
             // Registers narrower than they grow are refused, and ones that saturate are not for limits.
             if (stage.kind.starts_with("cic")) stage.arithmetic.state_bits.reset();
             if (stage.kind.starts_with("cic")) stage.arithmetic.state_overflow.reset();
+            if (stage.kind == "cic-decimator" && chance(random, 70)) random_discards(random, stage);
             if (i + 1 < count) stage.arithmetic.stage_format = format;
             is_stable = is_stable && is_stable_as_stored(stage);
             chain.push_back(std::move(stage));
@@ -85,7 +105,7 @@ TEST_CASE("rates: no twin of a chain that changes the rate exceeds its limits wh
     const std::uint64_t seed = 20261205;
     INFO("seed " << seed);
     Random random(seed);
-    std::int64_t chains = 0, claimed = 0, exempt_samples = 0, clipped = 0;
+    std::int64_t chains = 0, claimed = 0, exempt_samples = 0, clipped = 0, discarding = 0;
     for (int trial = 0; trial < 250; ++trial) {
         const DescribedChain chain = random_rate_chain(random, trial % 2 == 1);
         const auto twin = make_twin(chain);
@@ -127,6 +147,9 @@ TEST_CASE("rates: no twin of a chain that changes the rate exceeds its limits wh
             REQUIRE((error >= bound.lower && error <= bound.upper));
         }
         clipped += first_clip.has_value();
+        discarding += std::any_of(stages.begin(), stages.end(), [](const FilterStage& stage) {
+            return !stage.arithmetic.discarded_bits.empty() && stage.arithmetic.discarded_bits.back() > 0;
+        });
         ++chains;
     }
     // All of it must have happened.
@@ -134,4 +157,5 @@ TEST_CASE("rates: no twin of a chain that changes the rate exceeds its limits wh
     CHECK(claimed > 20000);
     CHECK(exempt_samples > 1000);
     CHECK(clipped > 10);
+    CHECK(discarding > 50);
 }

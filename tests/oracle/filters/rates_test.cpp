@@ -343,6 +343,20 @@ TEST_CASE("rates: the L1 norm is the largest output of any phase", "[filters]") 
     }
 }
 
+TEST_CASE("rates: responses that would take minutes are not run", "[filters]") {
+    // 3105 responses behind a rise by 3812 are 1e11 samples: the L1 norm is the stages' product, 2 x 2 at most as the
+    // last comb of each has delay 2, and how much to flush is not known.
+    const CicInterpolator up{4, 3812, 2, std::nullopt};
+    const CicDecimator down{2, 3105, 2, std::nullopt, 0};
+    const FilterChain chain{FilterStage{up, std::nullopt}, FilterStage{down, std::nullopt}};
+    CHECK(l1_norm(chain) ==
+          Approx(l1_norm({FilterStage{up, std::nullopt}}) * l1_norm({FilterStage{down, std::nullopt}})));
+    CHECK_FALSE(flush_samples(chain, 1.0, 0x1p-16));
+    // Alone the most laborious stage is run.
+    const FilterChain most{FilterStage{CicDecimator{1, 4096, 2, std::nullopt, 0}, std::nullopt}};
+    CHECK(l1_norm(most) == Approx(1.0));
+}
+
 TEST_CASE("rates: after the flush nothing of the past is left, and it keeps the cycle", "[filters]") {
     const double half_step = 0x1p-16;
     for (const auto& changer : rate_changers()) {

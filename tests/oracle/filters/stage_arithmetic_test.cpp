@@ -48,6 +48,16 @@ TEST_CASE("arithmetic: a stage's own table goes over the defaults, word by word"
     CHECK((own->stage_format->name == "q31" && own->coefficient_fraction_bits == 14));
 }
 
+TEST_CASE("arithmetic: the bits that registers discard are a list of whole numbers", "[filters]") {
+    const std::vector<double> some{0.0, 3.0, 4.0, 5.0}, others{1.0, 1.0};
+    const auto defaults = make_arithmetic(words({{"discarded_bits", some}}));
+    REQUIRE(defaults);
+    CHECK(defaults->discarded_bits == std::vector<int>{0, 3, 4, 5});
+    CHECK(make_arithmetic({}, *defaults)->discarded_bits == defaults->discarded_bits);
+    CHECK(make_arithmetic(words({{"discarded_bits", others}}), *defaults)->discarded_bits == std::vector<int>{1, 1});
+    CHECK(refusal_of({{"discarded_bits", std::vector<double>{1.5}}}) != "accepted");
+}
+
 TEST_CASE("arithmetic: every rounding and every format can be said", "[filters]") {
     for (const std::string_view name : rounding_names()) {
         const auto made = make_arithmetic(words({{"rounding", std::string(name)}}));
