@@ -4,9 +4,11 @@
 #include <cmath>
 
 #include "oracle/arithmetic/cic_registers.hpp"
+#include "oracle/arithmetic/exact_chain.hpp"
 #include "oracle/arithmetic/family.hpp"
 #include "oracle/arithmetic/named_coefficients.hpp"
 #include "oracle/filters/coefficients.hpp"
+#include "oracle/filters/stability.hpp"
 #include "stimuli/number_text.hpp"
 
 namespace halflsb {
@@ -182,12 +184,41 @@ std::optional<Error> number_that_cannot_be(const DescribedStage& described) {
                   "give number = \"float32\", or words of whole numbers");
 }
 
+/// What puts a pole where none may be: "a1 = ..., a2 = ... of section 2"; nothing where all decays.
+std::optional<std::string> unstable_part(const FilterStage& stage) {
+    const std::string all = "its coefficients";
+    if (const auto* recursion = std::get_if<Recursion>(&stage.design); recursion && !is_stable(*recursion)) return all;
+    if (const auto* comb = std::get_if<Comb>(&stage.design); comb && std::fabs(comb->feedback) >= 1.0) return all;
+    const auto* cascade = std::get_if<BiquadCascade>(&stage.design);
+    if (cascade == nullptr) return std::nullopt;
+    for (std::size_t j = 0; j < cascade->sections.size(); ++j) {
+        const BiquadSection& s = cascade->sections[j];
+        if (is_stable(s)) continue;
+        return "a1 = " + number_text(s.a1) + ", a2 = " + number_text(s.a2) + " of section " +
+               text_of(static_cast<int>(j) + 1);
+    }
+    return std::nullopt;
+}
+
+/// Rounded to 24 bits, poles near the circle may come to lie on it.
+std::optional<Error> unstable_as_floats(const DescribedStage& described) {
+    if (unstable_part(described.stage)) return std::nullopt;  // not the words' fault
+    for (const FilterStage& stored : exact_stages(described)) {
+        if (const auto part = unstable_part(stored)) {
+            return refuse("number",
+                          "in float32 the filter is unstable: " + *part + " put a pole on the unit circle or outside",
+                          "design it for a lower rate, or compute it in whole numbers with more bits");
+        }
+    }
+    return std::nullopt;
+}
+
 }  // namespace
 
 std::optional<Error> contradiction_in(const DescribedStage& stage) {
     if (auto error = number_that_cannot_be(stage)) return error;
     if (auto error = division_that_cannot_be(stage)) return error;
-    if (stage.number == NumberKind::float32) return std::nullopt;
+    if (stage.number == NumberKind::float32) return unstable_as_floats(stage);
     if (auto error = coefficient_outside(stage)) return error;
     if (auto error = accumulator_too_narrow(stage)) return error;
     if (auto error = registers_that_cannot_be(stage)) return error;

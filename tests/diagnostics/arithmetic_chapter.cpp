@@ -91,6 +91,9 @@ const std::vector<Body> contradictory = {
     {"a fraction saved of rounded products", sections,
      "coefficient_fraction_bits = 14\nrounding_at = \"product\"\nfraction_saving = \"on\"\n"},
     {"a fraction saved of a difference", one_pole, "coefficient_fraction_bits = 15\nfraction_saving = \"on\"\n"},
+    {"a section that float32 makes unstable",
+     "kind = \"biquad-cascade\"\nsections = [[1, 0, 0, -1.99999999, 0.999999991]]\n", "", "f32"},
+    {"a recursion that float32 makes unstable", "kind = \"iir\"\nb = [1]\na = [1, -0.99999999]\n", "", "f32"},
 };
 
 const std::vector<Body> not_exact = {

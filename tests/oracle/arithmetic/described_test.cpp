@@ -254,6 +254,29 @@ TEST_CASE("described: integers neither take nor give f32 words") {
           "number: f32 words come from integers (give number = \"float32\", or words of whole numbers)");
 }
 
+TEST_CASE("described: what float32 makes unstable is refused") {
+    const auto refused = [](double a1, double a2) {
+        return refusal(
+            {stage(
+                "biquad-cascade",
+                {{"sections", std::vector<std::vector<double>>{{0.25, 0.0, 0.0, -1.0, 0.5}, {1.0, 0.0, 0.0, a1, a2}}}},
+                {})},
+            "f32", "f32");
+    };
+    // 2^-24 below 1 is a float32, 2^-26 below 1 is none.
+    CHECK(refused(0.0, 1.0 - 0x1p-24) == "described");
+    CHECK(refused(0.0, 1.0 - 0x1p-26) ==
+          "number: in float32 the filter is unstable: a1 = 0, a2 = 1 of section 2 put a pole on the unit circle or "
+          "outside (design it for a lower rate, or compute it in whole numbers with more bits)");
+    const auto comb = [](double feedback) {
+        return refusal({stage("comb", {{"delay_samples", whole(3)}, {"feedback", feedback}}, {})}, "f32", "f32");
+    };
+    CHECK(comb(0.999) == "described");
+    CHECK(comb(1.0 - 0x1p-26) ==
+          "number: in float32 the filter is unstable: its coefficients put a pole on the unit circle or outside "
+          "(design it for a lower rate, or compute it in whole numbers with more bits)");
+}
+
 TEST_CASE("described: words of another kind of filter are refused in the stage's own table") {
     const auto misplaced = [](std::string_view kind, std::initializer_list<Given> given,
                               std::initializer_list<Given> own) {
