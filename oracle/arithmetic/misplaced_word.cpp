@@ -29,6 +29,8 @@ Lacking lacking_of(const FilterStage& stage, std::string_view word) {
         if (is_by_shift(stage))
             return {"a one-pole that shifts", "leave it out, or give coefficient with coefficient_fraction_bits"};
     }
+    if (family == Family::cic && word == "accumulator_bits")
+        return {text_of(family), "give state_bits, the width of its registers"};
     return {text_of(family), "leave it out"};
 }
 

@@ -81,6 +81,7 @@ const std::vector<Body> contradictory = {
      "kind = \"biquad-cascade\"\nsections = [[4096, 0, 0, -0.5, 0.25]]\n",
      "coefficient_fraction_bits = 50\naccumulator_bits = 64\nstate_bits = 64\nstate_fraction_bits = 62\n"},
     {"registers that are too narrow", cic, "state_bits = 24\n"},
+    {"an accumulator of a CIC", cic, "accumulator_bits = 24\n"},
     {"discards of seven registers", cic, "discarded_bits = [1, 6, 9, 13, 14, 15, 16]\n"},
     {"one discard", cic, "discarded_bits = [4]\n"},
     {"the discards of the paper with that of the output", cic, "discarded_bits = [1, 6, 9, 13, 14, 15, 16, 17, 19]\n"},
