@@ -16,6 +16,19 @@ using Place = RoundingPoint::Place;
 
 constexpr double unlimited = std::numeric_limits<double>::infinity();
 
+/// What the loop of an element makes of its own errors; 1 where there is none.
+double loop_gain_of(const ChainElement& element) {
+    if (!element.is_recursive()) return 1.0;
+    if (const Comb* comb = element.comb()) return 1.0 / (1.0 - std::fabs(comb->feedback));
+    return l1_norm(element.loop());
+}
+
+/// How large an error can get on its way through an element; `gain` is that of the whole of it.
+double reach_of(Place place, double loop_gain, double gain) {
+    if (place == Place::loop) return loop_gain;
+    return place == Place::entry ? gain : 1.0;
+}
+
 class ElementPoints {
 public:
     /// `error_in` bounds the error of what comes in.
@@ -24,7 +37,7 @@ public:
           stage_(*element.stage),
           use_(use),
           gain_(l1_norm(element.exact)),
-          loop_gain_(element.is_recursive() ? loop_gain() : 1.0),
+          loop_gain_(loop_gain_of(element)),
           error_out_(error_in * gain_) {
         const auto level = [&](std::size_t stages, std::size_t sections) {
             FilterChain path(exact.stages.begin(), exact.stages.begin() + static_cast<std::ptrdiff_t>(stages));
@@ -215,14 +228,8 @@ private:
         return error / (1.0 - part);
     }
 
-    double loop_gain() const {
-        if (const Comb* comb = element_.comb()) return 1.0 / (1.0 - std::fabs(comb->feedback));
-        return l1_norm(element_.loop());
-    }
-
     RoundingPoint& push(const char* what, Place place, double error, int count) {
-        if (error > 0.0)
-            error_out_ += error * (place == Place::loop ? loop_gain_ : place == Place::entry ? gain_ : 1.0);
+        if (error > 0.0) error_out_ += error * reach_of(place, loop_gain_, gain_);
         RoundingPoint point;
         point.name = element_.name + ", " + what;
         point.stage = element_.stage_index;
@@ -252,14 +259,11 @@ private:
 
 /// Largest error that the points of an element of integers put into its result.
 double error_of_integers(const ChainElement& element, const std::vector<RoundingPoint>& points, double gain) {
+    const double loop_gain = loop_gain_of(element);
     double error = 0.0;
     for (const RoundingPoint& point : points) {
         if (point.stage != element.stage_index || point.node.section != element.node.section) continue;
-        const bool comes_back = point.place == Place::loop && element.is_recursive();
-        const double reach = point.place == Place::entry ? gain
-                             : !comes_back               ? 1.0
-                             : element.has_sums()        ? l1_norm(element.loop())
-                                                         : 1.0 / (1.0 - std::fabs(element.comb()->feedback));
+        const double reach = reach_of(point.place, loop_gain, gain);
         error += point.error.largest() * reach * (point.saves_fraction ? 2.0 : 1.0);
     }
     return error;

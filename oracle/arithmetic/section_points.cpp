@@ -3,8 +3,6 @@
 
 #include <algorithm>
 
-#include "oracle/arithmetic/family.hpp"
-
 namespace halflsb {
 
 namespace {
@@ -58,7 +56,7 @@ private:
         SumTarget first = here_.at_section("state", j, Place::entry);
         first.saves_fraction = here_.stage.fraction_saving;
         first.fraction_bits = state.fraction_bits;
-        first.from_input = path_to_states(s, first.node);
+        first.from_input = path_to_state(here_.exact.stages, first.node);
         std::vector<Term> terms{here_.whole(here_.in)};
         for (const double a : s.feedback) terms.push_back(here_.feedback(a, state));
         here_.sums.add_sum(std::move(terms), first);
@@ -84,17 +82,6 @@ private:
             if (k <= s.feedback.size()) terms.push_back(here_.feedback(s.feedback[k - 1], here_.stage.out.word));
             here_.sums.add_sum(std::move(terms), state);
         }
-    }
-
-    FilterChain path_to_states(const SectionCoefficients& s, const FilterNode& node) const {
-        if (family_of(here_.stage.stage) != Family::recursion) return path_to_state(here_.exact.stages, node);
-        FilterChain path = here_.exact_up_to(here_.index);
-        std::vector<double> a{1.0};
-        a.insert(a.end(), s.feedback.begin(), s.feedback.end());
-        FilterStage loop;
-        loop.design = Recursion{{1.0}, a};
-        path.push_back(loop);
-        return path;
     }
 
     void of_difference(double k) {

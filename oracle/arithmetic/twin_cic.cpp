@@ -35,15 +35,14 @@ public:
     CicTwin(const CicPlan& plan, const Quotient& quotient, const Word& out, const std::string& name)
         : plan_(plan),
           quotient_(quotient),
-          last_(name + (plan.decimates ? "comb " : "integrator ") + std::to_string(plan.order),
-                plan.word(2 * plan.order - 1)),
+          last_(name + name_of_register(plan.decimates ? 2 * plan.order : plan.order), plan.word(2 * plan.order - 1)),
           output_(name + "output", out),
           integrals_(plan.order, 0),
           past_(plan.order, History<std::int64_t>(plan.delay)),
           kept_({plan.factor, plan.phase}) {
         for (std::size_t k = 1; k <= plan.order; ++k) {
-            integrators_.emplace_back(name + "integrator " + std::to_string(k), plan.word(k - 1));
-            combs_.emplace_back(name + "comb " + std::to_string(k), plan.word(plan.order + k - 1));
+            integrators_.emplace_back(name + name_of_register(k), plan.word(k - 1));
+            combs_.emplace_back(name + name_of_register(plan.order + k), plan.word(plan.order + k - 1));
         }
         for (std::size_t j = 0; j < 2 * plan.order; ++j) drops_.push_back(plan.dropped_before(j));
     }
@@ -118,6 +117,9 @@ public:
     }
 
 private:
+    std::string name_of_register(std::size_t j) const {
+        return name_of_cic_register(static_cast<int>(plan_.order), static_cast<int>(j));
+    }
     Int128 integrated(Int128 number) {
         for (std::size_t k = 0; k < plan_.order; ++k) {
             number = integrals_[k] = integrators_[k].hold(integrals_[k] + (number >> drops_[k]));

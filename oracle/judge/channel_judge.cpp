@@ -30,15 +30,11 @@ std::string samples_text(int count) {
 }  // namespace
 
 ChannelJudge::ChannelJudge(const Plan& plan, const Case& the_case, int channel)
-    : plan_(plan),
-      case_(the_case),
-      channel_(channel),
-      is_driven_(is_driven(the_case, channel)),
+    : judged_{plan, the_case, channel, asked_limits(plan, the_case, channel)},
       latency_rule_(find_latency_rule(the_case)),
       expected_lag_(expected_lag_of(the_case)),
       wanted_(wanted_references(the_case, channel)),
       reference_(plan, the_case, channel, wanted_),
-      judged_{plan, the_case, channel, asked_limits(plan, the_case, channel)},
       pass_(judged_, expected_lag_),
       window_(lag_window_of(plan, the_case)),
       lag_(window_, expected_lag_, first_lag_sample(plan, the_case, window_)),
@@ -48,9 +44,9 @@ ChannelJudge::ChannelJudge(const Plan& plan, const Case& the_case, int channel)
 void ChannelJudge::add(std::span<const Code> sent, std::span<const Code> response) {
     const ReferenceBlock block = reference_.next(sent);
     pass_.add(block, response);
-    if (!is_driven_ || latency_rule_ == nullptr) return;
+    if (!judged_.is_driven() || latency_rule_ == nullptr) return;
     response_values_.resize(response.size());
-    values_of(plan_.signal.output, response, response_values_);
+    values_of(judged_.plan.signal.output, response, response_values_);
     lag_.add(block.declared, response_values_);
     // The sums only grow: once there is evidence enough, more changes nothing. To look costs a stretch of sums, so
     // small blocks do not look each time.
@@ -63,7 +59,7 @@ void ChannelJudge::add(std::span<const Code> sent, std::span<const Code> respons
 }
 
 bool ChannelJudge::latency_told() const {
-    return is_driven_ && latency_rule_ != nullptr && std::abs(expected_lag_) <= window_ &&
+    return judged_.is_driven() && latency_rule_ != nullptr && std::abs(expected_lag_) <= window_ &&
            (has_evidence_ || discrimination_.smallest() >= evidence_needed_);
 }
 
@@ -72,7 +68,8 @@ bool ChannelJudge::begin_second_pass() {
     lags_ = lag_.value();
     const int measured = lags_->best_lag;
     if (!std::isfinite(lags_->residual_at(measured)) || measured == expected_lag_) return false;
-    second_.emplace(SecondPass{AlignedPass(judged_, measured), ReferenceSource(plan_, case_, channel_, wanted_)});
+    second_.emplace(SecondPass{AlignedPass(judged_, measured),
+                               ReferenceSource(judged_.plan, judged_.the_case, judged_.channel, wanted_)});
     return true;
 }
 
@@ -94,7 +91,7 @@ ChannelJudge::Latency ChannelJudge::latency_found() const {
 }
 
 std::optional<RuleVerdict> ChannelJudge::latency_verdict(const Rule& rule) const {
-    if (!is_driven_) return std::nullopt;
+    if (!judged_.is_driven()) return std::nullopt;
     RuleVerdict verdict{rule, Verdict::undecided, "declared", {}, {}, std::nullopt};
     JudgedFigure figure{
         "latency", std::nullopt, static_cast<double>(expected_lag_), std::nullopt, "samples", false, true, {}};
@@ -140,7 +137,7 @@ std::optional<RuleVerdict> ChannelJudge::verdict(const Rule& rule) const {
     } else {
         verdict = pass_.verdict(rule, reference_.rails());
     }
-    if (verdict) verdict->channel = plan_.signal.channels == 1 ? 0 : channel_;
+    if (verdict) verdict->channel = judged_.plan.signal.channels == 1 ? 0 : judged_.channel;
     return verdict;
 }
 

@@ -23,7 +23,7 @@ public:
     /// The plan and the case must outlive the judge; channels count from 1. The filter must be known.
     ChannelJudge(const Plan& plan, const Case& the_case, int channel);
 
-    int channel() const { return channel_; }
+    int channel() const { return judged_.channel; }
     /// The channel's next codes, in whole rate cycles (case_rates.hpp), from index 0 on.
     void add(std::span<const Code> sent, std::span<const Code> response);
     /// After the last sample. True when the response fits better at another lag than the expected one: all
@@ -47,15 +47,11 @@ private:
     Latency latency_found() const;
     std::optional<RuleVerdict> latency_verdict(const Rule& rule) const;
 
-    const Plan& plan_;
-    const Case& case_;
-    int channel_;
-    bool is_driven_;
+    JudgedChannel judged_;
     const Rule* latency_rule_;
     int expected_lag_;
     WantedReferences wanted_;
     ReferenceSource reference_;
-    JudgedChannel judged_;
     AlignedPass pass_;
     int window_;
     LagMeasure lag_;

@@ -3,7 +3,6 @@
 #include <bit>
 #include <cmath>
 
-#include "oracle/arithmetic/declared.hpp"
 #include "oracle/arithmetic/error_bound.hpp"
 #include "tests/oracle/arithmetic/random_description.hpp"
 #include "tests/oracle/arithmetic/stimulus_words.hpp"
@@ -43,14 +42,10 @@ struct Extremes {
 };
 
 Extremes errors_of(const DescribedChain& chain, const std::vector<Code>& codes) {
-    std::vector<double> values(codes.size()), reference(codes.size());
-    values_at(chain.stages.front().in, codes, values);
-    make_declared_filter(chain, 1.0)->process(values, reference);
-    const auto response = twin_values_of_codes(chain, codes);
     Extremes found;
-    for (std::size_t n = 0; n < codes.size(); ++n) {
-        found.lowest = std::min(found.lowest, response[n] - reference[n]);
-        found.highest = std::max(found.highest, response[n] - reference[n]);
+    for (const double error : errors_of_codes(chain, codes)) {
+        found.lowest = std::min(found.lowest, error);
+        found.highest = std::max(found.highest, error);
     }
     return found;
 }

@@ -2,7 +2,6 @@
 #include <bit>
 #include <cmath>
 
-#include "oracle/arithmetic/declared.hpp"
 #include "oracle/arithmetic/error_bound.hpp"
 #include "oracle/arithmetic/rail_watch.hpp"
 #include "tests/oracle/arithmetic/random_description.hpp"
@@ -105,18 +104,15 @@ TEST_CASE("mixed chains: no response leaves its limits where they claim to hold"
         INFO("trial " << trial << ": " << text_of(chain));
         for (int run = 0; run < 3; ++run) {
             const auto codes = codes_of(random.whole(0, 2), random, chain.in, 500);
-            std::vector<double> values(codes.size()), reference(codes.size());
-            values_at(chain.described.stages.front().in, codes, values);
-            make_declared_filter(chain.described, 1.0)->process(values, reference);
             RailWatch watch(chain.described);
             std::vector<std::uint8_t> exempt(codes.size());
-            watch.add(values, exempt);
-            const auto response = twin_values_of_codes(chain.described, codes);
+            watch.add(values_of_codes(chain.described, codes), exempt);
+            const auto errors = errors_of_codes(chain.described, codes);
             for (std::size_t n = 0; n < codes.size(); ++n) {
                 if (exempt[n] != 0) continue;
                 ++claimed;
-                REQUIRE(response[n] - reference[n] >= bound.lower);
-                REQUIRE(response[n] - reference[n] <= bound.upper);
+                REQUIRE(errors[n] >= bound.lower);
+                REQUIRE(errors[n] <= bound.upper);
             }
         }
     }
@@ -140,18 +136,15 @@ TEST_CASE("mixed chains: rms and bias of noise stay within theirs, wherever the 
         const ErrorBound bound = derive(chain.described, use);
         if (std::isinf(bound.largest())) continue;
         const auto codes = codes_of(0, random, chain.in, all);
-        std::vector<double> values(all), reference(all);
-        values_at(chain.described.stages.front().in, codes, values);
-        make_declared_filter(chain.described, 1.0)->process(values, reference);
         RailWatch watch(chain.described);
         std::vector<std::uint8_t> exempt(all);
-        watch.add(values, exempt);
+        watch.add(values_of_codes(chain.described, codes), exempt);
         if (watch.first_unsafe_index()) continue;
-        const auto response = twin_values_of_codes(chain.described, codes);
+        const auto errors = errors_of_codes(chain.described, codes);
         double sum = 0.0, squares = 0.0;
         for (std::size_t n = all - static_cast<std::size_t>(use.samples); n < all; ++n) {
-            sum += response[n] - reference[n];
-            squares += (response[n] - reference[n]) * (response[n] - reference[n]);
+            sum += errors[n];
+            squares += errors[n] * errors[n];
         }
         const auto count = static_cast<double>(use.samples);
         const double rms = std::sqrt(squares / count), mean = sum / count;
@@ -184,12 +177,8 @@ BiasOfNoise bias_of_noise(const FilterStage& stage, std::string_view in, std::st
     use.input_rms = 1.0 / std::sqrt(3.0);
     const ErrorBound bound = derive(chain, use);
     const auto codes = codes_of(0, random, *sample_format(in), count);
-    std::vector<double> values(count), reference(count);
-    values_at(chain.stages.front().in, codes, values);
-    make_declared_filter(chain, 1.0)->process(values, reference);
-    const auto response = twin_values_of_codes(chain, codes);
     double sum = 0.0;
-    for (std::size_t n = 0; n < count; ++n) sum += response[n] - reference[n];
+    for (const double error : errors_of_codes(chain, codes)) sum += error;
     return {sum / static_cast<double>(count) / bound.step, bound.bias_lower / bound.step,
             bound.bias_upper / bound.step};
 }

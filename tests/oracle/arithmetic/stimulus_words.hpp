@@ -3,6 +3,7 @@
 
 #include <vector>
 
+#include "oracle/arithmetic/declared.hpp"
 #include "oracle/arithmetic/exact_chain.hpp"
 #include "oracle/arithmetic/twin.hpp"
 #include "tests/oracle/arithmetic/port_values.hpp"
@@ -41,6 +42,20 @@ inline std::vector<double> twin_values_of_codes(const DescribedChain& chain, con
     make_twin(chain)->process(codes, returned);
     values_at(chain.stages.back().out, returned, values);
     return values;
+}
+
+inline std::vector<double> values_of_codes(const DescribedChain& chain, const std::vector<Code>& codes) {
+    std::vector<double> values(codes.size());
+    values_at(chain.stages.front().in, codes, values);
+    return values;
+}
+
+/// Response of the twin less declared reference.
+inline std::vector<double> errors_of_codes(const DescribedChain& chain, const std::vector<Code>& codes) {
+    std::vector<double> errors = twin_values_of_codes(chain, codes), reference(codes.size());
+    make_declared_filter(chain, 1.0)->process(values_of_codes(chain, codes), reference);
+    for (std::size_t n = 0; n < codes.size(); ++n) errors[n] -= reference[n];
+    return errors;
 }
 
 /// `words` have the mid-code taken away.
