@@ -102,6 +102,14 @@ TEST_CASE("messages: layout of the greeting", "[wire]") {
     filter.nodes = 6;
     filter.tables = 7;
     check_layout(filter, "02 6D 61 01 02 03 04 05 06 07");
+    const auto written_out = decode<FilterPage>(hex("02 6D 61 01 02 03 04 05 06 07 01 00 01 00"));
+    REQUIRE(written_out);
+    CHECK(written_out->tables == filter.tables);
+    CHECK(written_out->up == 1);
+    CHECK(written_out->down == 1);
+    filter.up = 3;
+    filter.down = 2;
+    CHECK(encoded(filter) == hex("02 6D 61 01 02 03 04 05 06 07 03 00 02 00"));
     check_layout(SettingPage{"g", -1, 2, 0}, "01 67 FF FF FF FF 02 00 00 00 00 00 00 00");
     check_layout(Started{0x04030201, 256, 64}, "01 02 03 04 00 01 40");
     check_layout(Counters{1, 2, 3, 4, 5, 6}, "01 00 00 00 02 00 00 00 03 00 00 00 04 00 00 00 05 00 00 00 06 00 00 00");
