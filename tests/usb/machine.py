@@ -125,16 +125,26 @@ class Machine:
 
     def tell(self, name, **arguments):
         """One command of the emulator's control protocol; its answer. Events on the way are kept."""
-        self.qmp.sendall(json.dumps({"execute": name, "arguments": arguments}).encode() + b"\n")
-        for text in self._qmp_answers:
-            answer = json.loads(text)
-            if answer.get("event") == "DEVICE_DELETED":
-                self.deleted.append(answer["data"].get("device"))
-            elif "error" in answer:
-                raise RuntimeError(f"{name} {arguments}: {answer['error']['desc']}")
-            elif "return" in answer:
-                return answer["return"]
-        raise RuntimeError(f"{EMULATOR} ended during {name}: {self.emulator_said()}")
+        try:
+            self.qmp.sendall(json.dumps({"execute": name, "arguments": arguments}).encode() + b"\n")
+            for text in self._qmp_answers:
+                answer = json.loads(text)
+                if answer.get("event") == "DEVICE_DELETED":
+                    self.deleted.append(answer["data"].get("device"))
+                elif "error" in answer:
+                    raise RuntimeError(f"{name} {arguments}: {answer['error']['desc']}")
+                elif "return" in answer:
+                    return answer["return"]
+        except ConnectionError:
+            pass
+        raise RuntimeError(f"{EMULATOR} ended{self._end()} during {name}: {self.emulator_said()}")
+
+    def _end(self):
+        """How the emulator ended: a negative status is the signal that killed it, a crash of its own."""
+        try:
+            return f" with status {self.process.wait(timeout=5.0)}"
+        except subprocess.TimeoutExpired:
+            return " the connection but still runs"
 
     def plug(self, number, serial):
         self.tell("device_add", driver="usb-serial", id=f"adapter{number}", chardev=f"line{number}", bus="usb.0", serial=serial)
