@@ -14,6 +14,8 @@
 #include <span>
 #include <vector>
 
+#include "oracle/measure/batch_sums.hpp"
+
 namespace halflsb {
 
 /// One estimated point of S_xe / S_xx.
@@ -24,14 +26,28 @@ struct ResponsePoint {
     std::int64_t averages = 0;
 };
 
+/// All that a measure has seen, batch by batch; response_estimate.hpp says how sure it is.
+struct ResponseSums {
+    std::vector<double> cycles_per_sample;  ///< ascending, one a point of `sums`
+    BatchSums sums;
+    std::int64_t averages = 0;     ///< segments or realisations
+    double segments_a_part = 1.0;  ///< of the parts in `sums`
+    /// Correlation of what two neighbouring segments say, 0 where they share no sample.
+    double neighbour_correlation = 0.0;
+    /// What the window does to a response that bends from bin to bin: it is smoothed by a kernel of this variance, in
+    /// bins^2. 0 where points are not bins.
+    double smoothing_bins2 = 0.0;
+};
+
 class ResponseMeasure {
 public:
     virtual ~ResponseMeasure() = default;
     /// stimulus.size() == error.size(); consecutive samples. Any split into blocks gives the same
     /// figures, bit for bit.
     virtual void add(std::span<const double> stimulus, std::span<const double> error) = 0;
+    virtual ResponseSums sums() const = 0;
     /// Ascending in frequency.
-    virtual std::vector<ResponsePoint> value() const = 0;
+    std::vector<ResponsePoint> value() const;
 };
 
 /// Segment length for a record: the largest power of two that gives at least 8 segments, within
@@ -41,11 +57,12 @@ std::size_t response_segment_for(std::int64_t length_samples);
 /// Bins k / segment, k = 0 .. segment / 2. A last incomplete segment is padded with zeros.
 std::unique_ptr<ResponseMeasure> make_welch_response(std::size_t segment);
 
-/// One point per tone, ascending, by correlation with a Hann window over the whole record of known length.
-/// The tones must be resolved (below). Samples beyond the length count nothing. Cost: about four
-/// multiply-adds a sample and tone.
+/// One point per tone, ascending, by correlation with a Hann window over each realisation: so many samples in which
+/// the tones keep their phases, one after the other, `realisations` in all. The tones must be resolved (below) in
+/// one. Samples beyond the last count nothing, nor does a realisation that is cut, unless there is no other. Cost:
+/// about four multiply-adds a sample and tone.
 std::unique_ptr<ResponseMeasure> make_tone_response(std::vector<double> tones_cycles_per_sample,
-                                                    std::int64_t length_samples);
+                                                    std::int64_t realisation_samples, std::int64_t realisations = 1);
 
 /// Whether a Hann window over that many samples keeps the tones apart: each at least 4 / length from
 /// every other, from 0 and from 1/2. Its side lobes are then below -50 dB (Harris 1978), so a tone

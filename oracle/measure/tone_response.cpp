@@ -1,7 +1,6 @@
 #include <algorithm>
 #include <array>
 #include <cmath>
-#include <limits>
 #include <numbers>
 
 #include "oracle/measure/response.hpp"
@@ -15,6 +14,7 @@ using Complex = std::complex<double>;
 
 // Stretches begin at multiples of this index, so that block bounds do not move them.
 constexpr std::size_t stretch_samples = 256;
+constexpr std::size_t most_batches = 128;
 
 Complex unit_at_turns(double turns) {
     const double angle = 2.0 * std::numbers::pi * turns;
@@ -44,9 +44,13 @@ struct Tone {
     ComplexSum stimulus, error;
 };
 
+// A part of the sums is a realisation.
 class ToneResponse final : public ResponseMeasure {
 public:
-    ToneResponse(std::vector<double> tones, std::int64_t length) : length_(std::max<std::int64_t>(length, 1)) {
+    ToneResponse(std::vector<double> tones, std::int64_t realisation, std::int64_t realisations)
+        : length_(std::max<std::int64_t>(realisation, 1)),
+          realisations_left_(std::max<std::int64_t>(realisations, 1)),
+          sums_(tones.size(), most_batches) {
         std::sort(tones.begin(), tones.end());
         tones_.resize(tones.size());
         for (std::size_t i = 0; i < tones.size(); ++i) {
@@ -62,35 +66,55 @@ public:
 
     void add(std::span<const double> stimulus, std::span<const double> error) override {
         std::size_t done = 0;
-        while (done < stimulus.size()) {
-            const std::size_t count = std::min(stimulus.size() - done, stretch_samples - filled_);
+        while (done < stimulus.size() && realisations_left_ > 0) {
+            const auto to_end = static_cast<std::size_t>(length_ - first_) - filled_;
+            const std::size_t count = std::min({stimulus.size() - done, stretch_samples - filled_, to_end});
             std::copy_n(stimulus.data() + done, count, stimulus_.data() + filled_);
             std::copy_n(error.data() + done, count, error_.data() + filled_);
             filled_ += count;
             done += count;
-            if (filled_ < stretch_samples) return;
+            if (filled_ < stretch_samples && count < to_end) return;
             add_stretch(filled_, tones_);
-            first_ += static_cast<std::int64_t>(stretch_samples);
+            first_ += static_cast<std::int64_t>(filled_);
             filled_ = 0;
+            if (first_ == length_) finish_realisation();
         }
     }
 
-    std::vector<ResponsePoint> value() const override {
+    ResponseSums sums() const override {
+        ResponseSums all{{}, sums_, sums_.parts()};
+        for (const Tone& tone : tones_) all.cycles_per_sample.push_back(tone.cycles_per_sample);
+        if (sums_.parts() > 0) return all;
         std::vector<Tone> tones = tones_;
         add_stretch(filled_, tones);
-        std::vector<ResponsePoint> points;
-        for (const Tone& tone : tones) points.push_back(point_of(tone));
-        return points;
+        add_part(tones, all.sums);
+        all.averages = 1;
+        return all;
     }
 
 private:
+    void finish_realisation() {
+        add_part(tones_, sums_);
+        for (Tone& tone : tones_) tone.stimulus = tone.error = ComplexSum();
+        first_ = 0;
+        --realisations_left_;
+    }
+
+    static void add_part(const std::vector<Tone>& tones, BatchSums& sums) {
+        std::vector<Complex> cross;
+        std::vector<double> power;
+        for (const Tone& tone : tones) {
+            const Complex x = tone.stimulus.value();
+            cross.push_back(tone.error.value() * std::conj(x));
+            power.push_back(std::norm(x));
+        }
+        sums.add(cross, power);
+    }
+
     void add_stretch(std::size_t held, std::vector<Tone>& tones) const {
-        if (first_ >= length_) return;
-        const auto count =
-            static_cast<std::size_t>(std::min<std::int64_t>(static_cast<std::int64_t>(held), length_ - first_));
         const Complex window_base = unit_at_turns(static_cast<double>(first_) / static_cast<double>(length_));
         std::array<double, stretch_samples> x{}, e{};
-        for (std::size_t m = 0; m < count; ++m) {
+        for (std::size_t m = 0; m < held; ++m) {
             const Complex turn = window_turn_[m];
             const double cosine = window_base.real() * turn.real() - window_base.imag() * turn.imag();
             const double window = 0.5 - 0.5 * cosine;
@@ -99,7 +123,7 @@ private:
         }
         for (Tone& tone : tones) {
             double x_re = 0.0, x_im = 0.0, e_re = 0.0, e_im = 0.0;
-            for (std::size_t m = 0; m < count; ++m) {
+            for (std::size_t m = 0; m < held; ++m) {
                 const Complex turn = tone.turn[m];
                 x_re += x[m] * turn.real();
                 x_im += x[m] * turn.imag();
@@ -112,30 +136,20 @@ private:
         }
     }
 
-    static ResponsePoint point_of(const Tone& tone) {
-        constexpr double none = std::numeric_limits<double>::quiet_NaN();
-        const Complex x = tone.stimulus.value(), e = tone.error.value();
-        ResponsePoint point;
-        point.cycles_per_sample = tone.cycles_per_sample;
-        point.stimulus_power = std::norm(x);
-        point.difference = point.stimulus_power > 0.0 ? e * std::conj(x) / point.stimulus_power : Complex(none, none);
-        point.averages = 1;
-        return point;
-    }
-
-    std::int64_t length_;
+    std::int64_t length_, realisations_left_;
     std::vector<Tone> tones_;
     std::array<Complex, stretch_samples> window_turn_{};
-    std::int64_t first_ = 0;  ///< index of the first held sample
+    std::int64_t first_ = 0;  ///< index of the first held sample in its realisation
     std::size_t filled_ = 0;
     std::array<double, stretch_samples> stimulus_{}, error_{};
+    BatchSums sums_;
 };
 
 }  // namespace
 
 std::unique_ptr<ResponseMeasure> make_tone_response(std::vector<double> tones_cycles_per_sample,
-                                                    std::int64_t length_samples) {
-    return std::make_unique<ToneResponse>(std::move(tones_cycles_per_sample), length_samples);
+                                                    std::int64_t realisation_samples, std::int64_t realisations) {
+    return std::make_unique<ToneResponse>(std::move(tones_cycles_per_sample), realisation_samples, realisations);
 }
 
 bool tones_resolved(const std::vector<double>& tones_cycles_per_sample, std::int64_t length_samples) {
@@ -151,7 +165,5 @@ bool tones_resolved(const std::vector<double>& tones_cycles_per_sample, std::int
     }
     return tones.empty() || 0.5 - before >= least;
 }
-
-double gain_db(std::complex<double> response) { return 20.0 * std::log10(std::abs(response)); }
 
 }  // namespace halflsb

@@ -15,7 +15,7 @@ ROOMS = {
     "stimuli": ([], []),
     "oracle/filters": (["stimuli"], ["kissfft/"]),
     "oracle/arithmetic": (["oracle/filters"], []),
-    "oracle/measure": (["stimuli"], ["kissfft/"]),
+    "oracle/measure": (["stimuli"], ["kissfft/", "boost/math/distributions/"]),
     "oracle/rules": (["oracle/measure"], []),
     "oracle/judge": (["oracle/rules", "oracle/arithmetic"], []),
     "runner/world": (ORACLE + ["stimuli"], ["spdlog/", "sha2.h", "os"]),
