@@ -4,6 +4,7 @@
 #include <cmath>
 #include <kissfft/kissfft.hh>
 #include <numbers>
+#include <span>
 
 #include "oracle/measure/sine_columns.hpp"
 
@@ -12,7 +13,7 @@ namespace halflsb {
 namespace {
 
 constexpr double main_lobe_bins = 4.0;
-constexpr double noise_bandwidth_bins = 2.0044;  // sum w^2 N / (sum w)^2 of the coefficients below
+constexpr double noise_bandwidth_bins = 2.00435;  // sum w^2 N / (sum w)^2 of the coefficients below
 constexpr double a0 = 0.35875, a1 = 0.48829, a2 = 0.14128, a3 = 0.01168;
 
 // Periodic; the sum of its weights is a0 N.
@@ -36,10 +37,8 @@ struct Search {
 };
 
 // The frequency of the largest bin that is looked at; 0 when there is none with power.
-double largest_bin(const std::vector<double>& weighted, const Search& search) {
-    const std::size_t length = std::bit_ceil(weighted.size());
-    std::vector<double> padded = weighted;
-    padded.resize(length, 0.0);
+double largest_bin(const std::vector<double>& padded, const Search& search) {
+    const std::size_t length = padded.size();
     std::vector<std::complex<double>> spectrum(length / 2);
     kissfft<double>(length / 2, false).transform_real(padded.data(), spectrum.data());
     double largest = 0.0, found = 0.0;
@@ -56,14 +55,14 @@ double largest_bin(const std::vector<double>& weighted, const Search& search) {
     return found;
 }
 
-double power_at(double f, const std::vector<double>& weighted) {
+double power_at(double f, std::span<const double> weighted) {
     const SineProducts products = products_with(f, weighted);
     const double sum = a0 * static_cast<double>(weighted.size());
     return (products.cosine * products.cosine + products.sine * products.sine) / (sum * sum);
 }
 
 // The window's main lobe is nearly a Gaussian: the logarithm is nearly a parabola.
-double refined(double f, const std::vector<double>& weighted, double bin) {
+double refined(double f, std::span<const double> weighted, double bin) {
     for (const double part : {0.5, 0.1, 0.02}) {
         const double step = part * bin;
         const double below = std::log(power_at(f - step, weighted)), here = std::log(power_at(f, weighted)),
@@ -79,20 +78,23 @@ double refined(double f, const std::vector<double>& weighted, double bin) {
 
 std::optional<Spur> largest_spur(std::vector<double> without_fundamental, double fundamental_cycles_per_sample,
                                  double noise_variance) {
-    const double length = static_cast<double>(without_fundamental.size());
+    const std::size_t samples = without_fundamental.size();
+    const double length = static_cast<double>(samples);
     const Search search{fundamental_cycles_per_sample, 1.0 / length};
     weigh(without_fundamental);
+    without_fundamental.resize(std::bit_ceil(samples), 0.0);
+    const std::span<const double> weighted = std::span(without_fundamental).first(samples);
     const double bin_f = largest_bin(without_fundamental, search);
     if (bin_f == 0.0) return std::nullopt;
     Spur spur;
     spur.cycles_per_sample = bin_f;
     if (search.lines(bin_f) == 2.0) {
-        const double f = refined(bin_f, without_fundamental, search.bin);
+        const double f = refined(bin_f, weighted, search.bin);
         if (search.looks_at(f) && search.lines(f) == 2.0) spur.cycles_per_sample = f;
     }
     const double lines = search.lines(spur.cycles_per_sample);
     double& power = spur.mean_square.value;
-    power = lines * power_at(spur.cycles_per_sample, without_fundamental);
+    power = lines * power_at(spur.cycles_per_sample, weighted);
 
     const double share = noise_variance * noise_bandwidth_bins / length, noise = lines * share;
     spur.is_line = power > noise * std::log(1000.0 * length);

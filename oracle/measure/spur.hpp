@@ -1,7 +1,7 @@
 // The largest line of a record from which the fundamental was taken off. Used inside oracle/measure.
 //
 // Spectrum: 4-term Blackman-Harris window (Harris 1978: side lobes -92 dB, main lobe +-4 bins, noise bandwidth
-// 2.0044 bins), zeros up to a power of two. Left out: the main lobes about 0 and about the fundamental, that is
+// 2.00435 bins), zeros up to a power of two. Left out: the main lobes about 0 and about the fundamental, that is
 // less than 4 / samples from either: a spur there is not seen. No scalloping: the largest bin's frequency is
 // refined to the maximum of the windowed transform (three parabolas through its logarithm), and the level is taken
 // there. Within 4 / samples of half the rate a line and its image overlap; there the level of a line at exactly
@@ -25,7 +25,7 @@ struct Spur {
 };
 
 /// Nothing when all bins are left out or the rest has no power. Memory: 24 bytes a sample of the power of two
-/// that holds the record. Cost: one transform and nine passes.
+/// that holds the record, the record itself among them. Cost: one transform and nine passes.
 std::optional<Spur> largest_spur(std::vector<double> without_fundamental, double fundamental_cycles_per_sample,
                                  double noise_variance);
 

@@ -20,13 +20,14 @@ Figure ratio_db(const Figure& above, const Figure& below) {
             db_per_neper_of_power * std::hypot(relative(above), relative(below))};
 }
 
-bool stands_out(const SineFit& fit, double noise_variance, std::span<const double> samples) {
+// By the fit with the harmonics: what one of them leaks into the fit of the sine alone is no tone.
+bool stands_out(const HarmonicFit& joint, std::span<const double> samples) {
     double largest = 0.0;
     for (const double sample : samples) largest = std::max(largest, std::abs(sample));
-    if (!(fit.amplitude.value > largest * 0x1p-40)) return false;
+    if (!(joint.amplitude > largest * 0x1p-40)) return false;
     // Of noise alone N a^2 / (4 s^2) is exponential with mean 1.
     const double length = static_cast<double>(samples.size());
-    return length * fit.amplitude.value * fit.amplitude.value > 4.0 * noise_variance * std::log(1e6);
+    return length * joint.amplitude * joint.amplitude > 4.0 * joint.noise_variance * std::log(1e6);
 }
 
 Figure power_of(const SineFit& fit, double noise_variance) {
@@ -85,7 +86,7 @@ ToneAnswer measure_tone(const ToneQuestion& question, std::span<const double> sa
     const double f = sine.fit->cycles_per_sample.value;
     auto joint = fit_harmonics(f, question.highest_harmonic, samples);
     if (!joint) return {std::nullopt, ToneFault::not_determined};
-    if (!stands_out(*sine.fit, joint->noise_variance, samples)) return {std::nullopt, ToneFault::no_tone};
+    if (!stands_out(*joint, samples)) return {std::nullopt, ToneFault::no_tone};
     figures.harmonics = joint->harmonics;
     figures.is_perfect =
         !(sine.fit->rms_residual > 0x1p-46 * (sine.fit->amplitude.value + std::abs(sine.fit->offset.value)));

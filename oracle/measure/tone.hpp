@@ -69,7 +69,8 @@ struct ToneAnswer {
 
 /// `no_tone`: noise alone reaches that amplitude once in 10^6 records or more often, or it is below 2^-40 of
 /// the largest sample.
-/// Memory: 32 bytes a sample at most, so 32 MiB for the longest record.
+/// Memory: 24 bytes a sample of the power of two that holds the record, so 24 MiB for the longest, for the time of
+/// the call. Cost: half a second for the longest record and ten harmonics.
 ToneAnswer measure_tone(const ToneQuestion& question, std::span<const double> samples);
 
 /// Collects the record, 8 bytes a sample; what is beyond tone_most_samples is not kept, and the answer is
