@@ -110,6 +110,18 @@ TEST_CASE("sine fit: uncertainties are the Cramer-Rao bound over many cycles", "
     CHECK(fit->phase_radians.standard_uncertainty == Approx(std::sqrt(8.0 / n) * s / 0.5).epsilon(5e-3));
 }
 
+TEST_CASE("sine fit: the residual's variance is divided by samples less parameters", "[oracle]") {
+    auto record = sine(16, 0.125, 1.0, 0.3, 0.0);
+    Gaussian noise(8);
+    for (double& sample : record) sample += 0.01 * noise.next();
+    const auto fit = fit_sine_at(0.125, record).fit;
+    REQUIRE(fit);
+    // Coherent: the columns are orthogonal, of lengths sqrt(N / 2) and sqrt(N).
+    const double s = fit->rms_residual * std::sqrt(16.0 / 13.0);
+    CHECK(fit->amplitude.standard_uncertainty == Approx(s * std::sqrt(2.0 / 16.0)).epsilon(1e-12));
+    CHECK(fit->offset.standard_uncertainty == Approx(s / 4.0).epsilon(1e-12));
+}
+
 TEST_CASE("sine fit: 95 % intervals hold the true values", "[oracle]") {
     const int rounds = test::rounds_of(2000);
     int amplitude = 0, phase = 0, offset = 0, frequency = 0;

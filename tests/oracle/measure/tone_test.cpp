@@ -174,6 +174,10 @@ TEST_CASE("tone: harmonics that fold are told and not counted twice", "[oracle]"
         if (length % 2 == 0) CHECK(figures.sfdr_db->value == Approx(10.0 * std::log10(0.5e4)).margin(1e-3).epsilon(0));
     }
 
+    // Nearer to half the rate than half a bin is at half the rate: its two columns would be one.
+    CHECK(folded_harmonics(0.25 - 1e-5, 2, 1000)[0].cycles_per_sample == 0.5);
+    CHECK(folded_harmonics(0.25 - 3e-4, 2, 1000)[0].cycles_per_sample == Approx(0.5 - 6e-4).epsilon(1e-12));
+
     // No harmonic has a place: no THD.
     CHECK(!figures_of(question(0.25, 1), sum_of(128, {{0.25, 1.0, 0.3}, {0.1, 0.1, 0.0}})).thd_db);
 }
@@ -185,9 +189,10 @@ TEST_CASE("tone: a spur between the bins is found with its level", "[oracle]") {
         const double spur = random.between(0.3, 0.45);
         const auto figures =
             figures_of(question(0.1234567), sum_of(length, {{0.1234567, 1.0, 0.2}, {spur, 1e-4, random.ratio() * pi}}));
-        // Side lobes of the window: 92 dB and the image; three parabolas leave 1e-3 of a bin, 1e-5 dB.
-        CHECK(figures.sfdr_db->value == Approx(80.0).margin(1e-3).epsilon(0));
-        CHECK(figures.spur_cycles_per_sample == Approx(spur).margin(2e-3 / static_cast<double>(length)).epsilon(0));
+        // The image is 400 bins off or more: 92 dB down and a side lobe's 6 dB an octave (4 to 400 bins: 40 dB), so
+        // 3e-7 of the level. Three parabolas leave less than 1e-4 of a bin.
+        CHECK(figures.sfdr_db->value == Approx(80.0).margin(1e-5).epsilon(0));
+        CHECK(figures.spur_cycles_per_sample == Approx(spur).margin(1e-4 / static_cast<double>(length)).epsilon(0));
         CHECK(figures.spur_is_line);
     }
     // Within four bins of the fundamental nothing is seen, beyond it is.
@@ -209,6 +214,12 @@ TEST_CASE("tone: noise alone is no line, and its THD is said", "[oracle]") {
         add_noise(record, 0.01, noise);
         const auto figures = figures_of(question(stray_tone), record);
         lines += figures.spur_is_line;
+        // Without a harmonic its power is exponential, whose deviation is its mean; so it is said where the power is
+        // below that, and no larger power is surer.
+        for (const Harmonic& harmonic : figures.harmonics) {
+            const double mean = harmonic.noise_mean_square, said = harmonic.mean_square.standard_uncertainty;
+            CHECK((harmonic.mean_square.value < mean ? std::abs(said - mean) < 1e-9 * mean : said > 0.99 * mean));
+        }
         thd_square += figures.thd_percent->value * figures.thd_percent->value / rounds;
         said_square += figures.thd_of_noise_percent * figures.thd_of_noise_percent / rounds;
     }
@@ -244,6 +255,8 @@ TEST_CASE("tone: 95 % intervals hold SINAD, ENOB, THD and SFDR", "[oracle]") {
         enob += holds(bare.enob_bits->value, bare.enob_bits->standard_uncertainty,
                       std::log2(2.0 / std::sqrt(12.0 * bare_nad)));
         thd += holds(figures.thd_db->value, figures.thd_db->standard_uncertainty, decibels(std::hypot(second, third)));
+        CHECK(figures.thd_percent->standard_uncertainty ==
+              Approx(figures.thd_percent->value * std::log(10.0) / 20.0 * figures.thd_db->standard_uncertainty));
         sfdr += holds(figures.sfdr_db->value, figures.sfdr_db->standard_uncertainty, decibels(1.0 / second));
     }
     for (const int held : {sinad, enob, thd, sfdr, plain}) CHECK(is_binomial(held, rounds, 0.95));
