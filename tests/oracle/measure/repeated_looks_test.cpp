@@ -3,7 +3,7 @@
 #include <catch2/catch.hpp>
 
 #include "oracle/measure/response_estimate.hpp"
-#include "tests/oracle/support.hpp"
+#include "tests/oracle/measure/gaussian.hpp"
 #include "tests/support/rounds.hpp"
 
 using namespace halflsb;
@@ -57,11 +57,7 @@ Tested test_at(double true_shift_in_delta, double alpha, double beta, int runs, 
     constexpr double limit = 1000.0, fixed_parts = 100.0;
     const double delta = std::sqrt(fixed_length_samples(alpha, beta, 1.0, 1.0, 1.0) / fixed_parts);
     const RepeatedLooks looks(8, 1, 800);
-    Random random(seed);
-    const auto normal = [&random] {
-        return std::sqrt(-2.0 * std::log(random.between(0x1p-53, 1.0))) *
-               std::cos(6.283185307179586 * random.between(0.0, 1.0));
-    };
+    Gaussian normal(seed);
     Tested tested;
     for (int run = 0; run < runs; ++run) {
         BatchSums sums(1, 128);
@@ -69,7 +65,7 @@ Tested test_at(double true_shift_in_delta, double alpha, double beta, int runs, 
         std::int64_t part = 0;
         for (const std::int64_t look : looks.at_samples()) {
             for (; part < look; ++part) {
-                const std::complex<double> cross(true_shift_in_delta * delta + normal(), normal());
+                const std::complex<double> cross(true_shift_in_delta * delta + normal.next(), normal.next());
                 const double power = 1.0;
                 sums.add(std::span(&cross, 1), std::span(&power, 1));
             }

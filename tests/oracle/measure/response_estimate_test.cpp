@@ -5,7 +5,7 @@
 #include <functional>
 #include <numbers>
 
-#include "tests/oracle/support.hpp"
+#include "tests/oracle/measure/gaussian.hpp"
 #include "tests/support/rounds.hpp"
 
 using namespace halflsb;
@@ -15,11 +15,6 @@ namespace {
 
 constexpr double pi = std::numbers::pi;
 using Complex = std::complex<double>;
-
-double normal(Random& random) {
-    const double radius = std::sqrt(-2.0 * std::log(random.between(0x1p-53, 1.0)));
-    return radius * std::cos(2.0 * pi * random.between(0.0, 1.0));
-}
 
 // The design, and a board that has other taps: what lies between them is what is estimated.
 constexpr std::array design_taps{0.5, 0.5, 0.0};
@@ -39,18 +34,18 @@ std::vector<double> filtered(const std::array<double, 3>& taps, const std::vecto
 }
 
 // What the board adds to its response.
-using Rest = std::function<double(double value, Random&)>;
+using Rest = std::function<double(double value, Gaussian&)>;
 
-double added_noise(double value, Random& random) { return value + 0.02 * normal(random); }
+double added_noise(double value, Gaussian& normal) { return value + 0.02 * normal.next(); }
 // A coarse output of 6 bits, so coarse that its error is no noise.
-double rounded(double value, Random&) { return std::floor(value * 32.0 + 0.5) / 32.0; }
+double rounded(double value, Gaussian&) { return std::floor(value * 32.0 + 0.5) / 32.0; }
 // Distortion: its power follows the stimulus, which a variance of one figure for all levels would miss.
-double bent(double value, Random&) { return value + 0.05 * value * value; }
+double bent(double value, Gaussian&) { return value + 0.05 * value * value; }
 
-std::vector<double> error_of(const std::vector<double>& x, const Rest& rest, Random& random) {
+std::vector<double> error_of(const std::vector<double>& x, const Rest& rest, Gaussian& normal) {
     std::vector<double> error = filtered(board_taps, x);
     const std::vector<double> design = filtered(design_taps, x);
-    for (std::size_t n = 0; n < x.size(); ++n) error[n] = rest(error[n], random) - design[n];
+    for (std::size_t n = 0; n < x.size(); ++n) error[n] = rest(error[n], normal) - design[n];
     return error;
 }
 
@@ -96,6 +91,7 @@ TEST_CASE("response estimate: 95 % intervals from noise hold the true gain and p
     const Rest rest = GENERATE(Rest(added_noise), Rest(rounded), Rest(bent));
     const int boards = test::rounds_of(2000);
     Random random(20);
+    Gaussian normal(120);
     std::array<Held, 3> held;
     const std::array<std::size_t, 3> points{5, 16, 25};
     for (int board = 0; board < boards; ++board) {
@@ -103,7 +99,7 @@ TEST_CASE("response estimate: 95 % intervals from noise hold the true gain and p
         std::vector<double> x(2048);
         for (double& sample : x) sample = 0.9 * random.ratio();
         const auto measure = make_welch_response(64);
-        measure->add(x, error_of(x, rest, random));
+        measure->add(x, error_of(x, rest, normal));
         const ResponseSums sums = measure->sums();
         for (std::size_t i = 0; i < points.size(); ++i) count(held[i], sums, points[i]);
     }
@@ -115,13 +111,14 @@ TEST_CASE("response estimate: tones of random phases say it across realisations"
     const std::vector<double> tones{0.05, 0.13, 0.31};
     const int boards = test::rounds_of(2000);
     Random random(21);
+    Gaussian normal(121);
     std::array<Held, 3> held;
     for (int board = 0; board < boards; ++board) {
         constexpr std::size_t realisation = 128, realisations = 16;
         const auto measure = make_tone_response(tones, realisation, realisations);
         for (std::size_t i = 0; i < realisations; ++i) {
             const std::vector<double> x = tones_of_phases(tones, realisation, random);
-            measure->add(x, error_of(x, rest, random));
+            measure->add(x, error_of(x, rest, normal));
         }
         const ResponseSums sums = measure->sums();
         REQUIRE(sums.averages == static_cast<std::int64_t>(realisations));
@@ -133,9 +130,10 @@ TEST_CASE("response estimate: tones of random phases say it across realisations"
 
 TEST_CASE("response estimate: periods of one stimulus, and one realisation, have no spread to go by", "[measure]") {
     Random random(22);
+    Gaussian normal(122);
     const std::vector<double> x = tones_of_phases({0.05}, 1024, random);
     const auto measure = make_tone_response({0.05}, 1024);
-    measure->add(x, error_of(x, rounded, random));
+    measure->add(x, error_of(x, rounded, normal));
     const ResponseSums sums = measure->sums();
     const ResponseEstimate estimate = estimate_of(sums, 0);
     CHECK(std::isfinite(std::abs(estimate.value)));
@@ -192,7 +190,7 @@ TEST_CASE("response estimate: what the window smooths is taken off again", "[mea
 
 TEST_CASE("response estimate: of a stimulus that passes once, the spread is between neighbours", "[measure]") {
     const int boards = test::rounds_of(1000);
-    Random random(24);
+    Gaussian normal(124);
     int held = 0, counted = 0;
     const std::size_t length = 8192;
     std::vector<double> x(length);
@@ -202,7 +200,7 @@ TEST_CASE("response estimate: of a stimulus that passes once, the spread is betw
     }
     for (int board = 0; board < boards; ++board) {
         const auto measure = make_welch_response(256);
-        measure->add(x, error_of(x, added_noise, random));
+        measure->add(x, error_of(x, added_noise, normal));
         const ResponseSums sums = measure->sums();
         // Two or three batches of segments see a frequency: by themselves they know little.
         CHECK(estimate_of(sums, 60).degrees < 8.0);
