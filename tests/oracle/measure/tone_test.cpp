@@ -206,7 +206,7 @@ TEST_CASE("tone: a spur between the bins is found with its level", "[oracle]") {
 
 TEST_CASE("tone: noise alone is no line, and its THD is said", "[oracle]") {
     int lines = 0;
-    double thd_square = 0.0, said_square = 0.0;
+    double thd_square = 0.0, said_square = 0.0, sfdr = 0.0, sfdr_square = 0.0, sfdr_said_square = 0.0;
     const int rounds = test::rounds_of(500);
     Gaussian noise(3);
     for (int round = 0; round < rounds; ++round) {
@@ -214,6 +214,8 @@ TEST_CASE("tone: noise alone is no line, and its THD is said", "[oracle]") {
         add_noise(record, 0.01, noise);
         const auto figures = figures_of(question(stray_tone), record);
         lines += figures.spur_is_line;
+        const double db = figures.sfdr_db->value, u = figures.sfdr_db->standard_uncertainty;
+        sfdr += db / rounds, sfdr_square += db * db / rounds, sfdr_said_square += u * u / rounds;
         // Without a harmonic its power is exponential, whose deviation is its mean; so it is said where the power is
         // below that, and no larger power is surer.
         for (const Harmonic& harmonic : figures.harmonics) {
@@ -225,6 +227,10 @@ TEST_CASE("tone: noise alone is no line, and its THD is said", "[oracle]") {
     }
     // Less than one of a thousand: five of 500 would come once in 10^4.
     CHECK(lines < 5);
+    // The largest of the noise spreads as said. The window's bins overlap and there are not infinitely many: over
+    // 2,000 records 5 % less than said. Gumbel's kurtosis is 5.4: the deviation is sure to sqrt(4.4 / (4 rounds)).
+    const double spread = std::sqrt(sfdr_square - sfdr * sfdr);
+    CHECK(std::sqrt(sfdr_said_square) / spread == Approx(1.05).margin(4.0 * std::sqrt(1.1 / rounds)).epsilon(0));
     // Sums of 18 squares each round: relative deviation sqrt(2 / (18 rounds)), four of them.
     CHECK(thd_square == Approx(said_square).epsilon(4.0 * std::sqrt(2.0 / (18.0 * rounds))));
 }
