@@ -8,22 +8,12 @@
 #include <cmath>
 #include <complex>
 #include <cstddef>
-#include <numbers>
 #include <span>
 #include <vector>
 
+#include "oracle/measure/turns.hpp"
+
 namespace halflsb {
-
-/// a * b less the nearest whole number, exact but for the last rounding: phases stay true in long records.
-inline double turns_modulo_1(double a, double b) {
-    const double product = a * b;
-    return std::remainder(product, 1.0) + std::fma(a, b, -product);
-}
-
-inline std::complex<double> unit_of_turns(double turns) {
-    const double angle = 2.0 * std::numbers::pi * turns;
-    return {std::cos(angle), std::sin(angle)};
-}
 
 /// The index that time is counted from; half-integer when the length is even.
 inline double middle_of(std::size_t samples) { return 0.5 * (static_cast<double>(samples) - 1.0); }

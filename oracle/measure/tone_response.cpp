@@ -1,10 +1,10 @@
 #include <algorithm>
 #include <array>
 #include <cmath>
-#include <numbers>
 
 #include "oracle/measure/response.hpp"
 #include "oracle/measure/sums.hpp"
+#include "oracle/measure/turns.hpp"
 
 namespace halflsb {
 
@@ -15,17 +15,6 @@ using Complex = std::complex<double>;
 // Stretches begin at multiples of this index, so that block bounds do not move them.
 constexpr std::size_t stretch_samples = 256;
 constexpr std::size_t most_batches = 128;
-
-Complex unit_at_turns(double turns) {
-    const double angle = 2.0 * std::numbers::pi * turns;
-    return {std::cos(angle), std::sin(angle)};
-}
-
-// a * b modulo 1, exact but for the last rounding, so that phases stay true after 1e9 samples.
-double product_modulo_1(double a, double b) {
-    const double product = a * b;
-    return std::remainder(product, 1.0) + std::fma(a, b, -product);
-}
 
 struct ComplexSum {
     CompensatedSum real, imaginary;
@@ -56,11 +45,11 @@ public:
         for (std::size_t i = 0; i < tones.size(); ++i) {
             tones_[i].cycles_per_sample = tones[i];
             for (std::size_t m = 0; m < stretch_samples; ++m) {
-                tones_[i].turn[m] = unit_at_turns(product_modulo_1(-tones[i], static_cast<double>(m)));
+                tones_[i].turn[m] = unit_of_turns(turns_modulo_1(-tones[i], static_cast<double>(m)));
             }
         }
         for (std::size_t m = 0; m < stretch_samples; ++m) {
-            window_turn_[m] = unit_at_turns(static_cast<double>(m) / static_cast<double>(length_));
+            window_turn_[m] = unit_of_turns(static_cast<double>(m) / static_cast<double>(length_));
         }
     }
 
@@ -112,7 +101,7 @@ private:
     }
 
     void add_stretch(std::size_t held, std::vector<Tone>& tones) const {
-        const Complex window_base = unit_at_turns(static_cast<double>(first_) / static_cast<double>(length_));
+        const Complex window_base = unit_of_turns(static_cast<double>(first_) / static_cast<double>(length_));
         std::array<double, stretch_samples> x{}, e{};
         for (std::size_t m = 0; m < held; ++m) {
             const Complex turn = window_turn_[m];
@@ -130,7 +119,7 @@ private:
                 e_re += e[m] * turn.real();
                 e_im += e[m] * turn.imag();
             }
-            const Complex base = unit_at_turns(product_modulo_1(-tone.cycles_per_sample, static_cast<double>(first_)));
+            const Complex base = unit_of_turns(turns_modulo_1(-tone.cycles_per_sample, static_cast<double>(first_)));
             tone.stimulus.add(Complex(x_re, x_im) * base);
             tone.error.add(Complex(e_re, e_im) * base);
         }
