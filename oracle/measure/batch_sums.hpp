@@ -15,8 +15,9 @@ namespace halflsb {
 
 class BatchSums {
 public:
-    /// most: an even number, 4 or more. Memory: most x points x 24 bytes.
-    BatchSums(std::size_t points, std::size_t most);
+    /// most: an even number, 4 or more. The spread of the 64 batches that there are at least is known to 9 %. Memory:
+    /// most x points x 24 bytes, 6 MiB for the 2049 points of the longest segment.
+    explicit BatchSums(std::size_t points, std::size_t most = 128);
 
     /// One more part (a segment, a pair of them, a realisation), all points of it. In order of time.
     void add(std::span<const std::complex<double>> cross, std::span<const double> power);

@@ -14,7 +14,6 @@ using Complex = std::complex<double>;
 
 // Stretches begin at multiples of this index, so that block bounds do not move them.
 constexpr std::size_t stretch_samples = 256;
-constexpr std::size_t most_batches = 128;
 
 struct ComplexSum {
     CompensatedSum real, imaginary;
@@ -39,7 +38,7 @@ public:
     ToneResponse(std::vector<double> tones, std::int64_t realisation, std::int64_t realisations)
         : length_(std::max<std::int64_t>(realisation, 1)),
           realisations_left_(std::max<std::int64_t>(realisations, 1)),
-          sums_(tones.size(), most_batches) {
+          sums_(tones.size()) {
         std::sort(tones.begin(), tones.end());
         tones_.resize(tones.size());
         for (std::size_t i = 0; i < tones.size(); ++i) {

@@ -60,7 +60,7 @@ Tested test_at(double true_shift_in_delta, double alpha, double beta, int runs, 
     Gaussian normal(seed);
     Tested tested;
     for (int run = 0; run < runs; ++run) {
-        BatchSums sums(1, 128);
+        BatchSums sums(1);
         bool is_above = false, is_below = false;
         std::int64_t part = 0;
         for (const std::int64_t look : looks.at_samples()) {
