@@ -22,13 +22,9 @@
 #include <span>
 #include <string_view>
 
-namespace halflsb {
+#include "oracle/measure/figure.hpp"
 
-/// A figure with its standard uncertainty, in the figure's unit.
-struct Figure {
-    double value = 0.0;
-    double standard_uncertainty = 0.0;
-};
+namespace halflsb {
 
 /// Why no answer can be given.
 enum class ToneFault {
