@@ -14,6 +14,11 @@ public:
         lost_ += (sum_ - (sum - used)) + (term - used);
         sum_ = sum;
     }
+    /// All that another sum has had, in its place in the order.
+    void add(const CompensatedSum& other) {
+        add(other.sum_);
+        lost_ += other.lost_;
+    }
     double value() const { return sum_ + lost_; }
 
 private:
