@@ -173,6 +173,10 @@ class WireHost:
                 del self.to_send[: os.write(self.descriptor, self.to_send[:65536])]
             except BlockingIOError:
                 pass
+            except OSError as error:
+                # What it said before it went is still to be read.
+                if not readable:
+                    raise WireError(f"the board is gone: {error}") from error
         if readable:
             try:
                 got = os.read(self.descriptor, 65536)
