@@ -1,5 +1,7 @@
 #include "oracle/measure/batch_sums.hpp"
 
+#include <limits>
+
 namespace halflsb {
 
 BatchSums::BatchSums(std::size_t points, std::size_t most) : points_(points), most_(most) {}
@@ -19,6 +21,20 @@ void BatchSums::add(std::span<const std::complex<double>> cross, std::span<const
     }
     ++parts_in_last_;
     ++parts_;
+}
+
+BatchSums::Total BatchSums::total(std::size_t point) const {
+    Total total;
+    for (std::size_t batch = 0; batch < batches_; ++batch) {
+        total.cross += cross(batch, point);
+        total.power += power(batch, point);
+    }
+    return total;
+}
+
+std::complex<double> BatchSums::Total::ratio() const {
+    constexpr double none = std::numeric_limits<double>::quiet_NaN();
+    return power > 0.0 ? cross / power : std::complex<double>(none, none);
 }
 
 void BatchSums::merge_neighbours() {

@@ -30,6 +30,15 @@ public:
     std::complex<double> cross(std::size_t batch, std::size_t point) const { return cross_[batch * points_ + point]; }
     double power(std::size_t batch, std::size_t point) const { return power_[batch * points_ + point]; }
 
+    /// Over all batches, in their order.
+    struct Total {
+        std::complex<double> cross;
+        double power = 0.0;
+        /// cross / power; NaN without power.
+        std::complex<double> ratio() const;
+    };
+    Total total(std::size_t point) const;
+
 private:
     void merge_neighbours();
 

@@ -14,25 +14,14 @@ using Complex = std::complex<double>;
 
 constexpr double none = std::numeric_limits<double>::quiet_NaN();
 
-struct Totals {
-    Complex cross;
-    double power = 0.0;
-    double share_squares = 0.0;  ///< sum (S_b / S)^2: 1 / (how many equal batches they are)
-
-    Complex difference() const { return power > 0.0 ? cross / power : Complex(none, none); }
-};
-
-Totals totals_of(const BatchSums& sums, std::size_t point) {
-    Totals totals;
+/// sum (S_b / S)^2: 1 / (how many equal batches they are).
+double share_squares(const BatchSums& sums, std::size_t point, double total_power) {
     double squares = 0.0;
     for (std::size_t batch = 0; batch < sums.batches(); ++batch) {
         const double power = sums.power(batch, point);
-        totals.cross += sums.cross(batch, point);
-        totals.power += power;
         squares += power * power;
     }
-    if (totals.power > 0.0) totals.share_squares = squares / (totals.power * totals.power);
-    return totals;
+    return squares / (total_power * total_power);
 }
 
 /// Batches side by side share half a segment, which the spread within them does not show: a batch of m segments has the
@@ -49,12 +38,12 @@ bool real_bin(double cycles_per_sample) { return cycles_per_sample == 0.0 || cyc
 ResponseEstimate weighted_sum(const ResponseSums& all, std::span<const ResponseTerm> terms, bool is_real) {
     const BatchSums& sums = all.sums;
     ResponseEstimate estimate;
-    std::vector<Totals> totals;
+    std::vector<BatchSums::Total> totals;
     double largest_share_squares = 0.0;
     for (const ResponseTerm& term : terms) {
-        totals.push_back(totals_of(sums, term.point));
-        estimate.value += term.weight * totals.back().difference();
-        largest_share_squares = std::max(largest_share_squares, totals.back().share_squares);
+        totals.push_back(sums.total(term.point));
+        estimate.value += term.weight * totals.back().ratio();
+        largest_share_squares = std::max(largest_share_squares, share_squares(sums, term.point, totals.back().power));
     }
     if (!std::isfinite(estimate.value.real()) || !std::isfinite(estimate.value.imag()))
         return {estimate.value, none, 0.0};
@@ -66,7 +55,7 @@ ResponseEstimate weighted_sum(const ResponseSums& all, std::span<const ResponseT
             const double power = sums.power(batch, terms[i].point);
             const double left = 1.0 - power / totals[i].power;
             if (!(left > 0.0)) continue;  // all power in one batch: no degrees, said below
-            const Complex u = sums.cross(batch, terms[i].point) - totals[i].difference() * power;
+            const Complex u = sums.cross(batch, terms[i].point) - totals[i].ratio() * power;
             rest += terms[i].weight * u / (totals[i].power * std::sqrt(left));
         }
         squares += is_real ? rest.real() * rest.real() : std::norm(rest) / 2.0;
@@ -86,8 +75,8 @@ ResponseEstimate estimate_of(const ResponseSums& all, std::size_t point) {
         const std::size_t last = all.cycles_per_sample.size() - 1;
         // The spectrum goes on mirrored beyond its ends.
         const std::size_t before = point == 0 ? 1 : point - 1, after = point == last ? last - 1 : point + 1;
-        const double least = totals_of(all.sums, point).power / 100.0;
-        if (totals_of(all.sums, before).power > least && totals_of(all.sums, after).power > least) {
+        const double least = all.sums.total(point).power / 100.0;
+        if (all.sums.total(before).power > least && all.sums.total(after).power > least) {
             const double part = all.smoothing_bins2 / 2.0;
             terms = {{before, -part}, {point, 1.0 + 2.0 * part}, {after, -part}};
         }
@@ -102,8 +91,8 @@ ResponseEstimate estimate_of(const ResponseSums& all, std::span<const ResponseTe
 ResponseEstimate estimate_from_neighbours(const ResponseSums& all, std::size_t point) {
     constexpr std::ptrdiff_t reach = 6, step = 2;
     const auto points = static_cast<std::ptrdiff_t>(all.sums.points());
-    const Totals own = totals_of(all.sums, point);
-    ResponseEstimate estimate{own.difference(), none, 0.0};
+    const BatchSums::Total own = all.sums.total(point);
+    ResponseEstimate estimate{own.ratio(), none, 0.0};
     if (!(own.power > 0.0)) return estimate;
     // Weighted least squares of D_j = a + b j, its sums first.
     double w = 0.0, wj = 0.0, wjj = 0.0;
@@ -113,15 +102,15 @@ ResponseEstimate estimate_from_neighbours(const ResponseSums& all, std::size_t p
     for (std::ptrdiff_t j = -reach; j <= reach; ++j) {
         const std::ptrdiff_t k = static_cast<std::ptrdiff_t>(point) + j * step;
         if (k <= 0 || k >= points - 1) continue;  // 0 and 1/2 are real, and of another variance
-        const Totals totals = totals_of(all.sums, static_cast<std::size_t>(k));
+        const BatchSums::Total total = all.sums.total(static_cast<std::size_t>(k));
         // A point at the edge of the stimulus' band says little, and little of its spread.
-        if (!(totals.power > own.power / 100.0)) continue;
-        const double place = static_cast<double>(j), weight = totals.power / own.power;
+        if (!(total.power > own.power / 100.0)) continue;
+        const double place = static_cast<double>(j), weight = total.power / own.power;
         places.push_back(place);
         weights.push_back(weight);
-        differences.push_back(totals.difference());
+        differences.push_back(total.ratio());
         w += weight, wj += weight * place, wjj += weight * place * place;
-        wd += weight * totals.difference(), wjd += weight * place * totals.difference();
+        wd += weight * total.ratio(), wjd += weight * place * total.ratio();
     }
     const double determinant = w * wjj - wj * wj;
     if (places.size() < 4 || !(determinant > 0.0)) return estimate;
