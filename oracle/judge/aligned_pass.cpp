@@ -37,6 +37,10 @@ void AlignedPass::add(const ReferenceBlock& reference, std::span<const Code> res
     response_.erase(response_.begin(), response_.begin() + static_cast<std::ptrdiff_t>(ready));
 }
 
+void AlignedPass::finish() {
+    for (const Judged& judged : judges_) judged.judge->finish();
+}
+
 void AlignedPass::measure_judged(const ReferenceBlock& reference, std::span<const Code> response) {
     const auto count = static_cast<std::int64_t>(response.size());
     const auto unjudged = static_cast<std::size_t>(std::clamp<std::int64_t>(first_judged_ - next_index_, 0, count));

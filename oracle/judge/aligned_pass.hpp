@@ -23,6 +23,8 @@ public:
     /// Plan and case must outlive the pass.
     AlignedPass(const JudgedChannel& channel, int lag_samples);
     void add(const ReferenceBlock& reference, std::span<const Code> response);
+    /// No more samples follow. Once, before any verdict.
+    void finish();
 
     /// On a rule of the case; none where it says nothing of this channel or is judged elsewhere (rule_kinds.hpp).
     /// `rails` are those of the reference that was added; derived limits need them.

@@ -96,6 +96,7 @@ Outcome<CaseJudgement> CaseJudge::finish(const ResponseReplay& replay) {
     if (goes_again) {
         if (auto done = go_through_again(replay); !done) return done.error();
     }
+    for (ChannelJudge& judge : channels_) judge.end_second_pass();
     CaseJudgement judgement;
     judgement.latency_told =
         std::any_of(channels_.begin(), channels_.end(), [](const ChannelJudge& judge) { return judge.latency_told(); });

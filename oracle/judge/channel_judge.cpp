@@ -64,6 +64,7 @@ bool ChannelJudge::latency_told() const {
 }
 
 bool ChannelJudge::begin_second_pass() {
+    pass_.finish();
     if (!latency_told()) return false;
     lags_ = lag_.value();
     const int measured = lags_->best_lag;
@@ -75,6 +76,10 @@ bool ChannelJudge::begin_second_pass() {
 
 void ChannelJudge::add_again(std::span<const Code> sent, std::span<const Code> response) {
     second_->pass.add(second_->reference.next(sent), response);
+}
+
+void ChannelJudge::end_second_pass() {
+    if (second_) second_->pass.finish();
 }
 
 ChannelJudge::Latency ChannelJudge::latency_found() const {

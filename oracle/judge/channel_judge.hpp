@@ -31,6 +31,8 @@ public:
     bool begin_second_pass();
     bool is_in_second_pass() const { return second_.has_value(); }
     void add_again(std::span<const Code> sent, std::span<const Code> response);
+    /// After the last of them; nothing to do without a second pass.
+    void end_second_pass();
 
     /// The reference could tell this channel's latency.
     bool latency_told() const;

@@ -107,6 +107,7 @@ public:
                        [](double measured, double ideal) { return measured - ideal; });
         measure_->add(block.reference.stimulus, error_);
     }
+    void finish() override { measure_->finish(); }
     RuleVerdict verdict(const RailWatch* rails) const override;
 
 private:

@@ -29,6 +29,8 @@ public:
     virtual ~RuleJudge() = default;
     /// The next samples that are judged, in order.
     virtual void add(const AlignedBlock& block) = 0;
+    /// No more samples follow. Once, before the verdict.
+    virtual void finish() {}
     /// On all that was added. `rails` are those of the reference; nullptr when nobody asked for them.
     virtual RuleVerdict verdict(const RailWatch* rails) const = 0;
 };

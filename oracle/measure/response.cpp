@@ -5,7 +5,7 @@
 namespace halflsb {
 
 std::vector<ResponsePoint> ResponseMeasure::value() const {
-    const ResponseSums all = sums();
+    const ResponseSums& all = sums();
     std::vector<ResponsePoint> points(all.cycles_per_sample.size());
     for (std::size_t k = 0; k < points.size(); ++k) {
         const BatchSums::Total total = all.sums.total(k);

@@ -29,9 +29,9 @@ struct ResponsePoint {
 /// All that a measure has seen, batch by batch; response_estimate.hpp says how sure it is.
 struct ResponseSums {
     std::vector<double> cycles_per_sample;  ///< ascending, one a point of `sums`
-    BatchSums sums;
-    std::int64_t averages = 0;     ///< segments or realisations
-    double segments_a_part = 1.0;  ///< of the parts in `sums`
+    BatchSums sums;                         ///< megabytes: not to be copied
+    std::int64_t averages = 0;              ///< segments or realisations
+    double segments_a_part = 1.0;           ///< of the parts in `sums`
     /// Correlation of what two neighbouring segments say, 0 where they share no sample.
     double neighbour_correlation = 0.0;
     /// What the window does to a response that bends from bin to bin: it is smoothed by a kernel of this variance, in
@@ -45,8 +45,11 @@ public:
     /// stimulus.size() == error.size(); consecutive samples. Any split into blocks gives the same
     /// figures, bit for bit.
     virtual void add(std::span<const double> stimulus, std::span<const double> error) = 0;
-    virtual ResponseSums sums() const = 0;
-    /// Ascending in frequency.
+    /// No more samples follow: what was cut at the end counts as well. Once.
+    virtual void finish() = 0;
+    /// Of what is whole; after finish(), of everything.
+    virtual const ResponseSums& sums() const = 0;
+    /// Of the same. Ascending in frequency.
     std::vector<ResponsePoint> value() const;
 };
 

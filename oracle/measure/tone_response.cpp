@@ -38,13 +38,13 @@ public:
     ToneResponse(std::vector<double> tones, std::int64_t realisation, std::int64_t realisations)
         : length_(std::max<std::int64_t>(realisation, 1)),
           realisations_left_(std::max<std::int64_t>(realisations, 1)),
-          sums_(tones.size()) {
-        std::sort(tones.begin(), tones.end());
-        tones_.resize(tones.size());
-        for (std::size_t i = 0; i < tones.size(); ++i) {
-            tones_[i].cycles_per_sample = tones[i];
+          tones_(tones.size()),
+          sums_{ascending(std::move(tones)), BatchSums(tones_.size())} {
+        const std::vector<double>& all = sums_.cycles_per_sample;
+        for (std::size_t i = 0; i < all.size(); ++i) {
+            tones_[i].cycles_per_sample = all[i];
             for (std::size_t m = 0; m < stretch_samples; ++m) {
-                tones_[i].turn[m] = unit_of_turns(turns_modulo_1(-tones[i], static_cast<double>(m)));
+                tones_[i].turn[m] = unit_of_turns(turns_modulo_1(-all[i], static_cast<double>(m)));
             }
         }
         for (std::size_t m = 0; m < stretch_samples; ++m) {
@@ -62,44 +62,44 @@ public:
             filled_ += count;
             done += count;
             if (filled_ < stretch_samples && count < to_end) return;
-            add_stretch(filled_, tones_);
+            add_stretch(filled_);
             first_ += static_cast<std::int64_t>(filled_);
             filled_ = 0;
             if (first_ == length_) finish_realisation();
         }
     }
 
-    ResponseSums sums() const override {
-        ResponseSums all{{}, sums_, sums_.parts()};
-        for (const Tone& tone : tones_) all.cycles_per_sample.push_back(tone.cycles_per_sample);
-        if (sums_.parts() > 0) return all;
-        std::vector<Tone> tones = tones_;
-        add_stretch(filled_, tones);
-        add_part(tones, all.sums);
-        all.averages = 1;
-        return all;
+    void finish() override {
+        // A realisation that is cut counts only where there is no other.
+        if (sums_.sums.parts() > 0) return;
+        add_stretch(filled_);
+        finish_realisation();
     }
 
+    const ResponseSums& sums() const override { return sums_; }
+
 private:
+    static std::vector<double> ascending(std::vector<double> tones) {
+        std::sort(tones.begin(), tones.end());
+        return tones;
+    }
+
     void finish_realisation() {
-        add_part(tones_, sums_);
-        for (Tone& tone : tones_) tone.stimulus = tone.error = ComplexSum();
+        std::vector<Complex> cross;
+        std::vector<double> power;
+        for (Tone& tone : tones_) {
+            const Complex x = tone.stimulus.value();
+            cross.push_back(tone.error.value() * std::conj(x));
+            power.push_back(std::norm(x));
+            tone.stimulus = tone.error = ComplexSum();
+        }
+        sums_.sums.add(cross, power);
+        sums_.averages += 1;
         first_ = 0;
         --realisations_left_;
     }
 
-    static void add_part(const std::vector<Tone>& tones, BatchSums& sums) {
-        std::vector<Complex> cross;
-        std::vector<double> power;
-        for (const Tone& tone : tones) {
-            const Complex x = tone.stimulus.value();
-            cross.push_back(tone.error.value() * std::conj(x));
-            power.push_back(std::norm(x));
-        }
-        sums.add(cross, power);
-    }
-
-    void add_stretch(std::size_t held, std::vector<Tone>& tones) const {
+    void add_stretch(std::size_t held) {
         const Complex window_base = unit_of_turns(static_cast<double>(first_) / static_cast<double>(length_));
         std::array<double, stretch_samples> x{}, e{};
         for (std::size_t m = 0; m < held; ++m) {
@@ -109,7 +109,7 @@ private:
             x[m] = window * stimulus_[m];
             e[m] = window * error_[m];
         }
-        for (Tone& tone : tones) {
+        for (Tone& tone : tones_) {
             double x_re = 0.0, x_im = 0.0, e_re = 0.0, e_im = 0.0;
             for (std::size_t m = 0; m < held; ++m) {
                 const Complex turn = tone.turn[m];
@@ -130,7 +130,7 @@ private:
     std::int64_t first_ = 0;  ///< index of the first held sample in its realisation
     std::size_t filled_ = 0;
     std::array<double, stretch_samples> stimulus_{}, error_{};
-    BatchSums sums_;
+    ResponseSums sums_;
 };
 
 }  // namespace

@@ -41,7 +41,8 @@ public:
           error_(segment, 0.0),
           waiting_stimulus_(segment),
           waiting_error_(segment),
-          sums_(segment / 2 + 1) {}
+          sums_{frequencies(segment),        BatchSums(segment / 2 + 1), 0, 2.0,
+                hann_overlap * hann_overlap, hann_smoothing_bins2} {}
 
     void add(std::span<const double> stimulus, std::span<const double> error) override {
         std::size_t done = 0;
@@ -56,31 +57,33 @@ public:
         }
     }
 
-    ResponseSums sums() const override {
-        BatchSums sums = sums_;
-        std::int64_t segments = 2 * sums.parts();
-        const bool last_is_cut = fresh_;
-        if (last_is_cut || has_waiting_) {
-            // Whatever has no partner yet: a waiting segment, a cut last one, or both.
-            std::vector<Complex> stimulus = has_waiting_ ? waiting_stimulus_ : std::vector<Complex>(segment_);
-            std::vector<Complex> error = has_waiting_ ? waiting_error_ : std::vector<Complex>(segment_);
-            if (last_is_cut) {
-                for (std::size_t n = 0; n < filled_; ++n) {
-                    stimulus[n].imag(window_[n] * stimulus_[n]);
-                    error[n].imag(window_[n] * error_[n]);
-                }
-            }
-            add_pair(stimulus, error, sums);
-            segments += (last_is_cut ? 1 : 0) + (has_waiting_ ? 1 : 0);
+    void finish() override {
+        // Whatever has no partner yet: a waiting segment, a cut last one, or both.
+        if (!has_waiting_ && !fresh_) return;
+        if (fresh_) {
+            std::fill(stimulus_.begin() + static_cast<std::ptrdiff_t>(filled_), stimulus_.end(), 0.0);
+            std::fill(error_.begin() + static_cast<std::ptrdiff_t>(filled_), error_.end(), 0.0);
+            finish_segment();
         }
-        std::vector<double> frequencies(sums.points());
-        for (std::size_t k = 0; k < frequencies.size(); ++k)
-            frequencies[k] = static_cast<double>(k) / static_cast<double>(segment_);
-        return {std::move(frequencies),      std::move(sums),     segments, 2.0,
-                hann_overlap * hann_overlap, hann_smoothing_bins2};
+        if (has_waiting_) {
+            // Its partner stays empty.
+            for (Complex& sample : waiting_stimulus_) sample.imag(0.0);
+            for (Complex& sample : waiting_error_) sample.imag(0.0);
+            add_pair();
+            has_waiting_ = false;
+            sums_.averages += 1;
+        }
     }
 
+    const ResponseSums& sums() const override { return sums_; }
+
 private:
+    static std::vector<double> frequencies(std::size_t segment) {
+        std::vector<double> bins(segment / 2 + 1);
+        for (std::size_t k = 0; k < bins.size(); ++k) bins[k] = static_cast<double>(k) / static_cast<double>(segment);
+        return bins;
+    }
+
     void finish_segment() {
         for (std::size_t n = 0; n < segment_; ++n) {
             if (has_waiting_) {
@@ -91,7 +94,10 @@ private:
                 waiting_error_[n] = window_[n] * error_[n];
             }
         }
-        if (has_waiting_) add_pair(waiting_stimulus_, waiting_error_, sums_);
+        if (has_waiting_) {
+            add_pair();
+            sums_.averages += 2;
+        }
         has_waiting_ = !has_waiting_;
         const auto half = static_cast<std::ptrdiff_t>(segment_ / 2);
         std::copy(stimulus_.begin() + half, stimulus_.end(), stimulus_.begin());
@@ -100,11 +106,11 @@ private:
         fresh_ = false;
     }
 
-    void add_pair(const std::vector<Complex>& stimulus, const std::vector<Complex>& error, BatchSums& sums) const {
-        std::vector<Complex> x(segment_), e(segment_), cross(sums.points());
-        std::vector<double> power(sums.points());
-        fft_.transform(stimulus.data(), x.data());
-        fft_.transform(error.data(), e.data());
+    void add_pair() {
+        std::vector<Complex> x(segment_), e(segment_), cross(sums_.sums.points());
+        std::vector<double> power(sums_.sums.points());
+        fft_.transform(waiting_stimulus_.data(), x.data());
+        fft_.transform(waiting_error_.data(), e.data());
         for (std::size_t k = 0; k <= segment_ / 2; ++k) {
             // With Z = A + jB of two real signals: 2 A(k) = Z(k) + conj Z(-k), 2j B(k) = Z(k) - conj Z(-k), and
             // sums over both segments need no separation:
@@ -113,7 +119,7 @@ private:
             power[k] = 0.5 * (std::norm(x[k]) + std::norm(x[mirror]));
             cross[k] = 0.5 * (times_conjugate(e[k], x[k]) + std::conj(times_conjugate(e[mirror], x[mirror])));
         }
-        sums.add(cross, power);
+        sums_.sums.add(cross, power);
     }
 
     static Complex times_conjugate(Complex a, Complex b) {
@@ -128,7 +134,7 @@ private:
     bool fresh_ = false;                                     ///< it holds samples that no segment has seen
     std::vector<Complex> waiting_stimulus_, waiting_error_;  ///< a windowed segment without a partner
     bool has_waiting_ = false;
-    BatchSums sums_;
+    ResponseSums sums_;
 };
 
 }  // namespace

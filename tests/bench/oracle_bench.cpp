@@ -127,6 +127,7 @@ int main(int count, char** arguments) {
             for_blocks(length, [&](std::size_t first, std::size_t n) {
                 measure->add(std::span(x).subspan(first, n), std::span(y).subspan(first, n));
             });
+            measure->finish();
             return measure->value()[0].stimulus_power;
         });
     };

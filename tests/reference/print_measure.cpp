@@ -37,6 +37,7 @@ void answer_discrimination(int window, std::span<const double> reference) {
 // for each point: frequency, real and imaginary part, stimulus power, averages
 void answer_response(ResponseMeasure& measure, std::span<const double> stimulus, std::span<const double> error) {
     measure.add(stimulus, error);
+    measure.finish();
     for (const ResponsePoint& p : measure.value()) {
         write_numbers({p.cycles_per_sample, p.difference.real(), p.difference.imag(), p.stimulus_power,
                        static_cast<double>(p.averages)});

@@ -105,7 +105,8 @@ TEST_CASE("response estimate: 95 % intervals from noise hold the true gain and p
         for (double& sample : x) sample = 0.9 * random.ratio();
         const auto measure = make_welch_response(64);
         measure->add(x, error_of(x, rest, normal));
-        const ResponseSums sums = measure->sums();
+        measure->finish();
+        const ResponseSums& sums = measure->sums();
         for (std::size_t i = 0; i < points.size(); ++i) count(held[i], sums, points[i]);
     }
     for (const Held& of_point : held) check(of_point, boards);
@@ -125,7 +126,8 @@ TEST_CASE("response estimate: tones of random phases say it across realisations"
             const std::vector<double> x = tones_of_phases(tones, realisation, random);
             measure->add(x, error_of(x, rest, normal));
         }
-        const ResponseSums sums = measure->sums();
+        measure->finish();
+        const ResponseSums& sums = measure->sums();
         REQUIRE(sums.averages == static_cast<std::int64_t>(realisations));
         for (std::size_t i = 0; i < tones.size(); ++i) count(held[i], sums, i);
     }
@@ -139,7 +141,8 @@ TEST_CASE("response estimate: periods of one stimulus, and one realisation, have
     const std::vector<double> x = tones_of_phases({0.05}, 1024, random);
     const auto measure = make_tone_response({0.05}, 1024);
     measure->add(x, error_of(x, rounded, normal));
-    const ResponseSums sums = measure->sums();
+    measure->finish();
+    const ResponseSums& sums = measure->sums();
     const ResponseEstimate estimate = estimate_of(sums, 0);
     CHECK(std::isfinite(std::abs(estimate.value)));
     CHECK(estimate.degrees == 0.0);
@@ -155,6 +158,7 @@ TEST_CASE("response estimate: where the stimulus has no power, nothing is said",
     const std::vector<double> silence(1024, 0.0), error(1024, 0.1);
     const auto measure = make_welch_response(64);
     measure->add(silence, error);
+    measure->finish();
     const ResponseEstimate estimate = estimate_of(measure->sums(), 3);
     CHECK(std::isnan(estimate.value.real()));
     CHECK(estimate.degrees == 0.0);
@@ -173,7 +177,8 @@ TEST_CASE("response estimate: what the window smooths is taken off again", "[mea
     }
     const auto measure = make_welch_response(64);
     measure->add(x, error);
-    const ResponseSums sums = measure->sums();
+    measure->finish();
+    const ResponseSums& sums = measure->sums();
     double plain_bias = 0.0, bias = 0.0;
     for (std::size_t k = 2; k <= 30; ++k) {
         const Complex truth = std::polar(0.1, -2.0 * pi * 6.0 * sums.cycles_per_sample[k]);
@@ -206,7 +211,8 @@ TEST_CASE("response estimate: of a stimulus that passes once, the spread is betw
     for (int board = 0; board < boards; ++board) {
         const auto measure = make_welch_response(256);
         measure->add(x, error_of(x, added_noise, normal));
-        const ResponseSums sums = measure->sums();
+        measure->finish();
+        const ResponseSums& sums = measure->sums();
         // Two or three batches of segments see a frequency: by themselves they know little.
         CHECK(estimate_of(sums, 60).degrees < 8.0);
         for (const std::size_t point : {40u, 64u, 90u}) {
