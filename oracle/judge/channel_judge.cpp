@@ -99,7 +99,7 @@ std::optional<RuleVerdict> ChannelJudge::latency_verdict(const Rule& rule) const
     if (!judged_.is_driven()) return std::nullopt;
     RuleVerdict verdict{rule, Verdict::undecided, "declared", {}, {}, std::nullopt};
     JudgedFigure figure{
-        "latency", std::nullopt, static_cast<double>(expected_lag_), std::nullopt, "samples", false, true, {}};
+        "latency", std::nullopt, static_cast<double>(expected_lag_), std::nullopt, "samples", false, Verdict::pass, {}};
     switch (latency_found()) {
         case Latency::not_told:
             if (std::get<LatencyRule>(rule.kind).implicit) return std::nullopt;
@@ -117,7 +117,7 @@ std::optional<RuleVerdict> ChannelJudge::latency_verdict(const Rule& rule) const
             verdict.reason = "the response is " + samples_text(lags_->best_lag) + " behind the reference" +
                              (std::abs(lags_->best_lag) == lags_->window ? ", or more: the window ends there" : "");
             figure.value = lags_->best_lag;
-            figure.passed = false;
+            figure.verdict = Verdict::fail;
             break;
         case Latency::fits_nowhere:
             verdict.reason = "the response fits at no lag of -" + std::to_string(lags_->window) + " to " +

@@ -12,8 +12,9 @@ namespace {
 
 /// Figures are held against their limits after rounding, so that limit, margin and verdict agree.
 JudgedFigure at_most(std::string name, double value, double limit, std::string unit) {
-    JudgedFigure figure{std::move(name), judged(value), judged(limit), std::nullopt, std::move(unit), false, false, {}};
-    figure.passed = *figure.value <= *figure.limit;
+    JudgedFigure figure{std::move(name), judged(value), judged(limit), std::nullopt,
+                        std::move(unit), false,         Verdict::fail, {}};
+    figure.verdict = pass_or_fail(*figure.value <= *figure.limit);
     figure.margin = judged(*figure.limit - *figure.value);
     return figure;
 }
@@ -24,15 +25,11 @@ JudgedFigure within(std::string name, const ErrorEnds& found, const ErrorEnds& l
     const double lowest = judged(found.lowest) + 0.0, highest = judged(found.highest) + 0.0;
     const double lower = judged(limits.lowest) + 0.0, upper = judged(limits.highest) + 0.0;
     const bool is_low = lowest - lower < upper - highest;
-    JudgedFigure figure{std::move(name),
-                        is_low ? lowest : highest,
-                        is_low ? lower : upper,
-                        std::nullopt,
-                        std::move(unit),
-                        is_low,
-                        false,
-                        {}};
-    figure.passed = lowest >= lower && highest <= upper;
+    JudgedFigure figure{std::move(name),        is_low ? lowest : highest,
+                        is_low ? lower : upper, std::nullopt,
+                        std::move(unit),        is_low,
+                        Verdict::fail,          {}};
+    figure.verdict = pass_or_fail(lowest >= lower && highest <= upper);
     figure.margin = judged(is_low ? lowest - lower : upper - highest);
     figure.note = "derived, " + brief(lower) + " .. " + brief(upper);
     return figure;
@@ -120,8 +117,10 @@ JudgedFigure ErrorJudge::told(const std::optional<Limit>& limit, std::string nam
     const Limit::In in = limit ? limit->in : natural_unit(signal);
     const double worth = worth_of(in, signal);
     if (!limit)
-        return {
-            std::move(name), judged(value / worth), std::nullopt, std::nullopt, unit_name(in, signal), false, true, {}};
+        return {std::move(name),       judged(value / worth),
+                std::nullopt,          std::nullopt,
+                unit_name(in, signal), false,
+                Verdict::pass,         {}};
     JudgedFigure figure = at_most(std::move(name), value / worth, limit->is_derived ? derived / worth : limit->number,
                                   unit_name(in, signal));
     if (limit->is_derived) figure.note = "derived";
@@ -136,7 +135,7 @@ JudgedFigure ErrorJudge::told_within(const Limit& limit, std::string name, Error
 }
 
 JudgedFigure ErrorJudge::snr(const ErrorFigures& figures) const {
-    JudgedFigure snr{"snr", std::nullopt, std::nullopt, std::nullopt, "dB", true, true, {}};
+    JudgedFigure snr{"snr", std::nullopt, std::nullopt, std::nullopt, "dB", true, Verdict::pass, {}};
     if (figures.snr_db) snr.value = judged(*figures.snr_db);
     if (!rule_.min_snr_db) return snr;
     snr.limit = judged(*rule_.min_snr_db);
@@ -144,9 +143,9 @@ JudgedFigure ErrorJudge::snr(const ErrorFigures& figures) const {
         snr.note = "identical";
     } else if (snr.value) {
         snr.margin = judged(*snr.value - *snr.limit);
-        snr.passed = *snr.value >= *snr.limit;
+        snr.verdict = pass_or_fail(*snr.value >= *snr.limit);
     } else {
-        snr.passed = false;
+        snr.verdict = Verdict::fail;
         snr.note = "the reference is silent";
     }
     return snr;
@@ -185,9 +184,7 @@ RuleVerdict ErrorJudge::verdict(const RailWatch* rails) const {
         verdict.reason = exempt_ > 0 ? exempt_text(exempt_, rails) : "no sample was compared";
         return verdict;
     }
-    const bool passed =
-        std::all_of(verdict.figures.begin(), verdict.figures.end(), [](const JudgedFigure& f) { return f.passed; });
-    verdict.verdict = passed ? Verdict::pass : Verdict::fail;
+    verdict.verdict = worst_of(verdict.figures);
     if (figures.identical) verdict.reason = "every sample equals the reference";
     if (figures.beyond > 0) {
         verdict.reason =
@@ -201,7 +198,7 @@ RuleVerdict ErrorJudge::verdict(const RailWatch* rails) const {
                            " on a rail may be reached: derived rms and bias are those of the worst case");
     }
     // The measure compares unrounded, the verdict rounded figures: a pass shows no bad sample.
-    if (passed) verdict.first_bad.reset();
+    if (verdict.verdict == Verdict::pass) verdict.first_bad.reset();
     return verdict;
 }
 

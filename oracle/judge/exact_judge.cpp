@@ -53,10 +53,10 @@ RuleVerdict ExactJudge::verdict(const RailWatch*) const {
                         std::nullopt,
                         "samples",
                         false,
-                        differing_ == 0,
+                        pass_or_fail(differing_ == 0),
                         {}};
     figure.margin = judged(0.0 - *figure.value);
-    verdict.verdict = figure.passed ? Verdict::pass : Verdict::fail;
+    verdict.verdict = figure.verdict;
     verdict.figures.push_back(std::move(figure));
     if (differing_ == 0) {
         verdict.reason = "every sample equals the declared arithmetic";

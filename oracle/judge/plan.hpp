@@ -11,6 +11,7 @@
 #include <vector>
 
 #include "oracle/filters/filter.hpp"
+#include "oracle/judge/certainty.hpp"
 #include "oracle/rules/rule.hpp"
 #include "stimuli/sample_format.hpp"
 #include "stimuli/stimulus.hpp"
@@ -83,6 +84,7 @@ struct Plan {
     Signal signal;
     FilterChain filter;  ///< as written, stages of every channel
     std::vector<Case> cases;
+    Certainty certainty = {};
     bool filter_is_unknown = false;    ///< kind = "unknown": there is no reference
     std::vector<PlanPart> parts = {};  ///< the plan first, then in the order of reading, each path once
     /// What limits were derived so far, shared by copies; never empty.

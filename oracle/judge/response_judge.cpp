@@ -41,7 +41,7 @@ JudgedFigure held(const Extreme& extreme, double limit_db, bool at_least, const 
     figure.unit = "dB";
     figure.at_least = at_least;
     const double gain_db = judged(extreme.gain_db);
-    figure.passed = at_least ? gain_db >= *figure.limit : gain_db <= *figure.limit;
+    figure.verdict = pass_or_fail(at_least ? gain_db >= *figure.limit : gain_db <= *figure.limit);
     figure.note = "at " + hz_text(extreme.hz);
     if (std::isfinite(gain_db)) {
         figure.value = gain_db;
@@ -148,9 +148,7 @@ RuleVerdict ResponseJudge::verdict(const RailWatch*) const {
         if (band.min_db) verdict.figures.push_back(held(*lowest, *band.min_db, true, band));
         if (band.max_db) verdict.figures.push_back(held(*highest, *band.max_db, false, band));
     }
-    if (std::any_of(verdict.figures.begin(), verdict.figures.end(), [](const JudgedFigure& f) { return !f.passed; })) {
-        verdict.verdict = Verdict::fail;
-    }
+    if (worst_of(verdict.figures) == Verdict::fail) verdict.verdict = Verdict::fail;
     return verdict;
 }
 

@@ -176,7 +176,8 @@ std::string UnchangedJudge::contradiction(bool is_same) const {
 
 void UnchangedJudge::judge_exactly(bool is_same, RuleVerdict& verdict) const {
     verdict.verdict = is_same ? Verdict::pass : Verdict::fail;
-    JudgedFigure figure{"changed samples", std::nullopt, 0.0, std::nullopt, "samples", false, is_same, {}};
+    JudgedFigure figure{
+        "changed samples", std::nullopt, 0.0, std::nullopt, "samples", false, pass_or_fail(is_same), {}};
     if (is_same || changed_ > 0) {
         figure.value = judged(static_cast<double>(changed_));
         figure.margin = judged(0.0 - *figure.value);
@@ -189,13 +190,13 @@ void UnchangedJudge::judge_exactly(bool is_same, RuleVerdict& verdict) const {
 }
 
 void UnchangedJudge::judge_within(bool is_same, RuleVerdict& verdict) const {
-    JudgedFigure figure{"max", judged(static_cast<double>(largest_lsb_)), limit_lsb_, std::nullopt, "LSB", false, true,
-                        {}};
-    figure.passed = *figure.value <= *figure.limit;
+    JudgedFigure figure{
+        "max", judged(static_cast<double>(largest_lsb_)), limit_lsb_, std::nullopt, "LSB", false, Verdict::pass, {}};
+    figure.verdict = pass_or_fail(*figure.value <= *figure.limit);
     figure.margin = judged(*figure.limit - *figure.value);
     // Beyond the kept samples an equal hash shows that nothing changed; an unequal one does not say by how much.
     const bool is_shown = is_same || keeps_all() || (!asked_.accepted->block_sha256.empty() && stretch_first_ < 0);
-    if (!figure.passed) {
+    if (!figure.passed()) {
         verdict.verdict = Verdict::fail;
     } else if (is_shown) {
         verdict.verdict = Verdict::pass;

@@ -44,6 +44,15 @@ std::string_view name_of(CaseVerdict verdict) {
     return "";
 }
 
+Verdict worst_of(const std::vector<JudgedFigure>& figures) {
+    Verdict worst = Verdict::pass;
+    for (const JudgedFigure& figure : figures) {
+        if (figure.verdict == Verdict::fail) return Verdict::fail;
+        if (figure.verdict == Verdict::undecided) worst = Verdict::undecided;
+    }
+    return worst;
+}
+
 CaseVerdict verdict_of(const std::vector<RuleVerdict>& rules) {
     CaseVerdict worst = CaseVerdict::pass;
     for (const RuleVerdict& rule : rules) {

@@ -32,8 +32,12 @@ struct JudgedFigure {
     std::optional<double> margin;  ///< distance to the limit, positive means room left
     std::string unit;              ///< "LSB", "dB", "samples", "of full scale" or the plan's unit
     bool at_least = false;         ///< the value must be at least the limit, not at most
-    bool passed = true;
+    Verdict verdict = Verdict::pass;
     std::string note;
+    /// Standard uncertainty of the value; none: the capture has this value exactly.
+    std::optional<double> uncertainty = {};
+
+    bool passed() const { return verdict == Verdict::pass; }
 };
 
 /// Codes around a sample, for the report.
@@ -55,10 +59,14 @@ struct RuleVerdict {
     int channel = 0;  ///< of the response, counted from 1; 0: the signal has only one
 };
 
-/// fail > undecided > pass over the rules.
+/// fail > undecided > pass over the figures.
+Verdict worst_of(const std::vector<JudgedFigure>& figures);
+/// The same over the rules.
 CaseVerdict verdict_of(const std::vector<RuleVerdict>& rules);
 
 /// `value` to 9 significant digits (decimal, round half even of the exact value).
 double judged(double value);
+
+inline Verdict pass_or_fail(bool passes) { return passes ? Verdict::pass : Verdict::fail; }
 
 }  // namespace halflsb

@@ -20,14 +20,35 @@ std::vector<std::string_view> roundings_with_default_first() {
 }  // namespace
 
 const Recipe& plan_recipe() {
-    static const Recipe recipe{"plan",
-                               "At the top of the file, above the first header.",
-                               {{.name = "title",
-                                 .type = ParameterType::text,
-                                 .unit = "characters",
-                                 .maximum = 200,
-                                 .required = true,
-                                 .help = "What this plan accepts, for the report."}}};
+    static const Certainty usual;
+    static const Recipe recipe{
+        "plan",
+        "At the top of the file, above the first header.",
+        {{.name = "title",
+          .type = ParameterType::text,
+          .unit = "characters",
+          .maximum = 200,
+          .required = true,
+          .help = "What this plan accepts, for the report."},
+         {.name = "alpha",
+          .minimum = 1e-12,
+          .maximum = 0.1,
+          .default_value = usual.alpha,
+          .help =
+              "Chance that a right board fails anywhere in the whole check; shared by all measured figures that are "
+              "uncertain."},
+         {.name = "beta",
+          .minimum = 1e-12,
+          .maximum = 0.1,
+          .default_value = usual.beta,
+          .help = "Chance that a figure which lies beyond its limit, and beyond the rule's zone of indifference, "
+                  "passes."},
+         {.name = "confidence",
+          .minimum = 0.5,
+          .maximum = 0.999999,
+          .above_minimum = true,
+          .default_value = usual.confidence,
+          .help = "Of the intervals in reports; no verdict hangs on it."}}};
     return recipe;
 }
 

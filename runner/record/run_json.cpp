@@ -35,14 +35,15 @@ Json firmware_json(const FirmwareCheck& firmware) {
 Json figure_json(const JudgedFigure& figure) {
     Json json = {{"name", figure.name},
                  {"value", number_json(figure.value)},
+                 {"uncertainty", number_json(figure.uncertainty)},
                  {"limit", number_json(figure.limit)},
                  {"margin", number_json(figure.margin)},
                  {"unit", text_json(figure.unit)},
                  {"at_least", figure.at_least},
-                 {"passed", figure.passed},
+                 {"verdict", name_of(figure.verdict)},
                  {"note", text_json(figure.note)}};
     // The judge's word for a response without any error: then no ratio to the error exists.
-    if (!figure.value && figure.passed && figure.note == "identical") json["identical"] = true;
+    if (!figure.value && figure.passed() && figure.note == "identical") json["identical"] = true;
     return json;
 }
 

@@ -56,7 +56,7 @@ std::string message_of(const CaseResult& result, Verdict blamed) {
         std::string part = rule_title(rule);
         // "max 1.5 LSB of 0.5" where there is a number, else why there is none.
         for (const JudgedFigure& figure : rule.figures) {
-            if (blamed == Verdict::fail && !figure.passed && figure.value && figure.limit) {
+            if (blamed == Verdict::fail && figure.verdict == blamed && figure.value && figure.limit) {
                 const auto [value, limit] = compared_text(*figure.value, *figure.limit);
                 part += ": " + figure.name + " " + value + " " + figure.unit +
                         (figure.at_least ? " below " : " against ") + limit;

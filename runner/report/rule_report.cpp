@@ -26,7 +26,7 @@ std::string with_unit(const std::string& number, const std::string& unit) {
 
 /// Room left as a part of the limit; what cannot be compared comes last.
 double relative_margin(const JudgedFigure& figure) {
-    if (!figure.passed) return -HUGE_VAL;
+    if (figure.verdict == Verdict::fail) return -HUGE_VAL;
     if (!figure.value || !figure.limit || !figure.margin) return HUGE_VAL;
     const double size = std::fabs(*figure.limit);
     return size > 0.0 ? *figure.margin / size : *figure.margin;
@@ -36,14 +36,20 @@ bool note_fits_cell(const JudgedFigure& figure) {
     return !figure.note.empty() && columns_of(printable(figure.note)) <= longest_note_in_cell;
 }
 
-std::string measured_cell(const JudgedFigure& figure) {
+/// `uncertainty` stands behind the number.
+std::string measured_text(const JudgedFigure& figure, const std::string& uncertainty) {
     if (figure.value) {
         const std::string number =
             figure.limit ? compared_text(*figure.value, *figure.limit).first : rounded_text(*figure.value);
-        return with_unit(number, figure.unit);
+        return with_unit(number + uncertainty, figure.unit);
     }
     if (note_fits_cell(figure)) return printable(figure.note);
     return figure.note.empty() ? "not measured" : "see below";
+}
+
+std::string measured_cell(const JudgedFigure& figure, const TextStyle& style) {
+    if (!figure.uncertainty) return measured_text(figure, "");
+    return measured_text(figure, (style.unicode ? " ± " : " +- ") + rounded_text(*figure.uncertainty, 2));
 }
 
 std::string limit_cell(const JudgedFigure& figure, const Rule& rule, const TextStyle& style) {
@@ -72,10 +78,10 @@ std::string figure_table(const RuleVerdict& verdict, const TextStyle& style) {
     std::string stacked, notes;
     for (const JudgedFigure* figure : shown) {
         const std::string name = printable(figure->name);
-        const std::string measured = measured_cell(*figure);
+        const std::string measured = measured_cell(*figure, style);
         const std::string limit = limit_cell(*figure, verdict.rule, style);
         const std::string margin = figure->margin ? with_unit(rounded_text(*figure->margin), figure->unit) : "none";
-        std::string word = figure->passed ? "" : "fail";
+        std::string word = figure->passed() ? "" : std::string(name_of(figure->verdict));
         if (figure->value && note_fits_cell(*figure)) word += (word.empty() ? "" : ", ") + printable(figure->note);
         table.rows.push_back({name, measured, limit, margin, word});
         stacked += wrapped(style,
@@ -138,8 +144,8 @@ std::string rule_brief(const RuleVerdict& verdict) {
         if (tightest == nullptr || relative_margin(figure) < relative_margin(*tightest)) tightest = &figure;
     }
     if (tightest == nullptr) return "";
-    std::string text = printable(tightest->name) + " " + measured_cell(*tightest);
-    const bool latency_as_asked = std::holds_alternative<LatencyRule>(verdict.rule.kind) && tightest->passed;
+    std::string text = printable(tightest->name) + " " + measured_text(*tightest, "");
+    const bool latency_as_asked = std::holds_alternative<LatencyRule>(verdict.rule.kind) && tightest->passed();
     if (tightest->value && tightest->limit && !latency_as_asked) {
         text += tightest->at_least ? ", at least " : " of ";
         text += compared_text(*tightest->value, *tightest->limit).second;

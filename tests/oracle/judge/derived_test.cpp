@@ -188,7 +188,7 @@ TEST_CASE("derived: a board that rounds up where floor was promised is beyond th
     CHECK(*largest.value == 0.5);
     CHECK_THAT(*largest.limit, Catch::Matchers::WithinAbs(0.0, 1e-6));
     CHECK_FALSE(largest.at_least);
-    CHECK_FALSE(largest.passed);
+    CHECK_FALSE(largest.passed());
     CHECK_THAT(*largest.margin, Catch::Matchers::WithinAbs(-0.5, 1e-6));
     CHECK_THAT(largest.note, Catch::StartsWith("derived, -0.9375 .. "));
     REQUIRE(wrong.first_bad);

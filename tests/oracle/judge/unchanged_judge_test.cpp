@@ -84,7 +84,7 @@ TEST_CASE("unchanged: one code off by 1 LSB fails wherever it is kept, with its 
                   "1 of the first 1000 samples, which the baseline keeps, differs from " + run + ", by 1 LSB");
             CHECK(*verdict.figures[0].value == 1.0);
             CHECK(*verdict.figures[0].margin == -1.0);
-            CHECK_FALSE(verdict.figures[0].passed);
+            CHECK_FALSE(verdict.figures[0].passed());
             CHECK(verdict.figures[0].note == "of the first 1000");
             REQUIRE(verdict.first_bad);
             const Neighbourhood& around = *verdict.first_bad;
@@ -125,7 +125,7 @@ TEST_CASE("unchanged: beyond the kept samples the first stretch that differs is 
         CHECK_FALSE(verdict.first_bad);
         REQUIRE(verdict.figures.size() == 1);
         CHECK_FALSE(verdict.figures[0].value);
-        CHECK_FALSE(verdict.figures[0].passed);
+        CHECK_FALSE(verdict.figures[0].passed());
         CHECK(verdict.figures[0].note == "beyond the kept samples");
         return verdict.reason;
     };

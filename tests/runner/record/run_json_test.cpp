@@ -75,11 +75,12 @@ TEST_CASE("run.json: a case carries verdict, grade, figures, neighbours, capture
     CHECK(rule.at("reason") == "3 of 2048 samples beyond max");
     CHECK(rule.at("figures").at(0) == Json{{"name", "max"},
                                            {"value", 1.5},
+                                           {"uncertainty", nullptr},
                                            {"limit", 0.5},
                                            {"margin", -1.0},
                                            {"unit", "LSB"},
                                            {"at_least", false},
-                                           {"passed", false},
+                                           {"verdict", "fail"},
                                            {"note", nullptr}});
     CHECK(rule.at("first_bad").at("index_samples") == 1041);
     CHECK(rule.at("first_bad").at("first_index_samples") == 1039);
@@ -99,7 +100,7 @@ TEST_CASE("run.json: what was not measured is null, NaN and infinity too", "[rec
     run.elapsed_s = std::nan("");
     run.signal.output = sample::f32();
     run.cases[0].stream.line_use_ratio.reset();
-    run.cases[0].rules[0].figures[0] = {"snr", std::nullopt, 60.0, std::nullopt, "dB", true, true, "identical"};
+    run.cases[0].rules[0].figures[0] = {"snr", std::nullopt, 60.0, std::nullopt, "dB", true, Verdict::pass, "identical"};
     JudgedFigure& figure = run.cases[1].rules[0].figures[0];
     figure.value = std::numeric_limits<double>::infinity();
     figure.margin = -std::numeric_limits<double>::infinity();

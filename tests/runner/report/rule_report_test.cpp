@@ -38,13 +38,30 @@ TEST_CASE("rule: the brief shows the figure with the least room for its limit", 
 
 TEST_CASE("rule: an exact match is told by its note, not by a missing number", "[report]") {
     RuleVerdict verdict = sample::error_passed(3);
-    verdict.figures = {{"snr", std::nullopt, 60.0, std::nullopt, "dB", true, true, "identical"}};
+    verdict.figures = {{"snr", std::nullopt, 60.0, std::nullopt, "dB", true, Verdict::pass, "identical"}};
     CHECK(rule_brief(verdict) == "snr identical");
     CHECK(rule_block(verdict, signal_at_1200_hz(), {}) ==
           "  error: pass\n"
           "    against the declared reference, asked at cw7.toml:3:3\n"
           "    figure   measured    limit  margin\n"
           "    snr     identical  ≥ 60 dB    none\n");
+}
+
+TEST_CASE("rule: how sure a figure is stands behind its number", "[report]") {
+    RuleVerdict verdict = sample::error_passed(3);
+    verdict.verdict = Verdict::undecided;
+    verdict.figures = {sample::figure("sinad", 61.5, 60.0, "dB", true), sample::figure("thd", -70.0, -72.0, "dB")};
+    verdict.figures[0].uncertainty = 0.1234;
+    verdict.figures[1].uncertainty = 2.0;
+    verdict.figures[1].verdict = Verdict::undecided;
+    CHECK(rule_brief(verdict) == "thd -70 dB of -72");
+    CHECK(rule_block(verdict, signal_at_1200_hz(), {}) ==
+          "  error: undecided\n"
+          "    against the declared reference, asked at cw7.toml:3:3\n"
+          "    figure        measured     limit  margin\n"
+          "    sinad   61.5 ± 0.12 dB   ≥ 60 dB  1.5 dB\n"
+          "    thd         -70 ± 2 dB  ≤ -72 dB   -2 dB  undecided\n");
+    CHECK(rule_block(verdict, signal_at_1200_hz(), {false, 80, false}).find("61.5 +- 0.12 dB") != std::string::npos);
 }
 
 TEST_CASE("rule: a latency that is off shows both numbers", "[report]") {
@@ -76,7 +93,7 @@ TEST_CASE("rule: a short note stands in the row, a long one below the table", "[
 
 TEST_CASE("rule: of many figures the worst are shown and the rest counted", "[report]") {
     RuleVerdict verdict = response_verdict(40);
-    verdict.figures[39].passed = false;
+    verdict.figures[39].verdict = Verdict::fail;
     const std::string block = rule_block(verdict, signal_at_1200_hz(), {});
     INFO(block);
     CHECK(block.find("    gain 39    -39 dB  ≤ 0.5 dB  39.5 dB  fail\n") != std::string::npos);

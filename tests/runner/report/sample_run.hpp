@@ -22,7 +22,7 @@ inline Rule latency_rule(int line) { return {LatencyRule{0, true}, {"cw7.toml", 
 
 inline JudgedFigure figure(std::string name, double value, double limit, std::string unit, bool at_least = false) {
     const double margin = at_least ? value - limit : limit - value;
-    return {std::move(name), value, limit, margin, std::move(unit), at_least, margin >= 0.0, ""};
+    return {std::move(name), value, limit, margin, std::move(unit), at_least, pass_or_fail(margin >= 0.0), ""};
 }
 
 inline RuleVerdict latency_passed(int line) {
@@ -109,7 +109,7 @@ inline CaseResult undecided_case() {
     RuleVerdict latency = latency_passed(30);
     latency.rule.kind = LatencyRule{0, false};
     latency.verdict = Verdict::undecided;
-    latency.figures = {{"latency", std::nullopt, 0.0, std::nullopt, "samples", false, true, ""}};
+    latency.figures = {{"latency", std::nullopt, 0.0, std::nullopt, "samples", false, Verdict::pass, ""}};
     latency.reason = "the response fits the reference at no lag from -64 to 64 samples";
     result.rules = {error_passed(28), latency};
     result.capture_file = "captures/004-dc.npy";
