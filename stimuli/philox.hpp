@@ -29,20 +29,22 @@ constexpr PhiloxCounter philox4x32_10(PhiloxCounter counter, PhiloxKey key) {
 /// What the numbers are for; different purposes of one seed never share a number.
 enum class RandomPurpose : std::uint32_t { noise = 0, phases = 1 };
 
-/// Two independent 64-bit numbers for each (seed, purpose, pair).
-///   counter = {pair low, pair high, purpose, 0}   key = {seed low, seed high}
-///   first = word 0 + 2^32 word 1                  second = word 2 + 2^32 word 3
-constexpr std::array<std::uint64_t, 2> random_pair(std::uint64_t seed, RandomPurpose purpose, std::uint64_t pair) {
+/// Two independent 64-bit numbers for each (seed, purpose, stream, pair).
+///   counter = {pair low, pair high, purpose, stream}   key = {seed low, seed high}
+///   first = word 0 + 2^32 word 1                       second = word 2 + 2^32 word 3
+constexpr std::array<std::uint64_t, 2> random_pair(std::uint64_t seed, RandomPurpose purpose, std::uint64_t pair,
+                                                   std::uint32_t stream = 0) {
     const PhiloxCounter words =
         philox4x32_10({static_cast<std::uint32_t>(pair), static_cast<std::uint32_t>(pair >> 32),
-                       static_cast<std::uint32_t>(purpose), 0},
+                       static_cast<std::uint32_t>(purpose), stream},
                       {static_cast<std::uint32_t>(seed), static_cast<std::uint32_t>(seed >> 32)});
     return {words[0] | std::uint64_t{words[1]} << 32, words[2] | std::uint64_t{words[3]} << 32};
 }
 
 /// Number `index` of the sequence: the first or second of pair index / 2.
-constexpr std::uint64_t random_bits(std::uint64_t seed, RandomPurpose purpose, std::uint64_t index) {
-    return random_pair(seed, purpose, index / 2)[index % 2];
+constexpr std::uint64_t random_bits(std::uint64_t seed, RandomPurpose purpose, std::uint64_t index,
+                                    std::uint32_t stream = 0) {
+    return random_pair(seed, purpose, index / 2, stream)[index % 2];
 }
 
 }  // namespace halflsb

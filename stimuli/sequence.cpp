@@ -49,7 +49,7 @@ public:
         for (const auto& part : parts_) {
             for (const Spectrum::Band& band : part->spectrum().bands) bands.push_back(band);
         }
-        return {joined_bands(std::move(bands)), {}};
+        return {.bands = joined_bands(std::move(bands))};
     }
 
 private:

@@ -25,6 +25,15 @@ struct Spectrum {
     std::vector<Band> bands = {};
     /// Single lines, cycles per sample, ascending.
     std::vector<double> tones = {};
+    /// Stretches of equal length, one after the other, in which the tones have phases of their own. A single one is
+    /// the whole record, and neither its start nor its length is said.
+    struct Realisations {
+        std::int64_t first_sample = 0;  ///< of the first one, an index of the stimulus
+        std::int64_t samples = 0;       ///< of each
+        std::int64_t count = 1;
+        bool operator==(const Realisations&) const = default;
+    };
+    Realisations realisations = {};
 };
 
 class Stimulus {

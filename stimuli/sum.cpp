@@ -42,16 +42,25 @@ public:
     }
 
     /// What the summands have. The tones of one that ends early are left out: they are lines only while
-    /// they last, and the estimate takes the whole record.
+    /// they last, and the estimate takes the whole record. Of those with other realisations than the most,
+    /// too: a phase that jumps within a stretch is no line of it, and one that stays makes the stretches alike.
     Spectrum spectrum() const override {
         Spectrum all;
+        std::vector<Spectrum> lasting;
         for (const auto& summand : summands_) {
             const Spectrum each = summand->spectrum();
             all.bands.insert(all.bands.end(), each.bands.begin(), each.bands.end());
             if (summand->length_samples() < length_samples()) continue;
+            if (each.realisations.count > all.realisations.count) all.realisations = each.realisations;
+            lasting.push_back(each);
+        }
+        for (const Spectrum& each : lasting) {
+            if (each.realisations != all.realisations) continue;
             all.tones.insert(all.tones.end(), each.tones.begin(), each.tones.end());
         }
-        return {joined_bands(std::move(all.bands)), once_only(std::move(all.tones))};
+        all.bands = joined_bands(std::move(all.bands));
+        all.tones = once_only(std::move(all.tones));
+        return all;
     }
 
 private:

@@ -13,8 +13,10 @@ AlignedPass::AlignedPass(const JudgedChannel& channel, int lag_samples)
       first_judged_(first_judged_sample(channel.plan, channel.the_case)),
       to_skip_(lag_samples < 0 ? static_cast<std::size_t>(-lag_samples) : 0) {
     if (first_judged_ > 0 && lag_samples > 0) first_judged_ += lag_samples;
+    JudgedChannel at_lag = channel;
+    at_lag.lag_samples = lag_samples;
     for (const Rule& rule : channel.the_case.rules) {
-        if (auto judge = make_judge(rule, channel)) judges_.push_back({&rule, std::move(judge)});
+        if (auto judge = make_judge(rule, at_lag)) judges_.push_back({&rule, std::move(judge)});
     }
     if (lag_samples > 0) {
         waiting_.append_silence(static_cast<std::size_t>(lag_samples), signal_,

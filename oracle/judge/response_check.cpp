@@ -36,6 +36,33 @@ bool response_is_told(const Plan& plan, const Case& the_case, const Rule& asked,
     return false;
 }
 
+/// Within one realisation. False: a refusal was added.
+bool tones_are_told(const Plan& plan, const Case& the_case, const Rule& asked, const Spectrum& spectrum,
+                    std::vector<Refusal>& refusals) {
+    const Spectrum::Realisations& sent = spectrum.realisations;
+    const CaseRates rates(plan, the_case);
+    if (sent.count > 1 && sent.samples % rates.cycle().inputs != 0) {
+        refusals.push_back({asked.position,
+                            "case \"" + the_case.name + "\" sends realisations of " + std::to_string(sent.samples) +
+                                " samples, and its filter, which returns " + std::to_string(rates.cycle().outputs) +
+                                " for " + std::to_string(rates.cycle().inputs) + ", needs a multiple of " +
+                                std::to_string(rates.cycle().inputs),
+                            "send " + std::to_string(sent.count * rates.whole_cycles(sent.samples)) +
+                                " samples from index " + std::to_string(sent.first_sample) + " on"});
+        return false;
+    }
+    const MeasuredRealisations parts = measured_realisations(plan, the_case);
+    if (tones_resolved(spectrum.tones, parts.samples)) return true;
+    const bool is_one = sent.count == 1;
+    refusals.push_back(
+        {asked.position,
+         "case \"" + the_case.name + "\" is too short to keep its tones apart: " + std::to_string(parts.samples) +
+             " samples" + (is_one ? "" : " in a realisation"),
+         std::string("tones must be 4 cycles apart over the ") + (is_one ? "record" : "realisation") +
+             ", and as far from 0 and Nyquist: lengthen it" + (is_one ? "" : ", or give it fewer realisations")});
+    return false;
+}
+
 }  // namespace
 
 void check(const ResponseRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
@@ -60,14 +87,7 @@ void check(const ResponseRule& rule, const Rule& asked, const Plan& plan, const 
         return;
     }
     const std::int64_t length = judged_samples(plan, the_case);
-    if (!tones_resolved(spectrum.tones, length)) {
-        refusals.push_back(
-            {asked.position,
-             "case \"" + the_case.name + "\" is too short to keep its tones apart: " + std::to_string(length) +
-                 " samples",
-             "tones must be 4 cycles apart over the record, and as far from 0 and Nyquist: lengthen it"});
-        return;
-    }
+    if (!spectrum.tones.empty() && !tones_are_told(plan, the_case, asked, spectrum, refusals)) return;
     constexpr std::int64_t shortest_samples = 64;
     if (spectrum.tones.empty() && length < shortest_samples) {
         refusals.push_back(

@@ -67,11 +67,29 @@ Spectrum measured_spectrum(const Plan& plan, const Case& the_case) {
     return spectrum;
 }
 
-std::unique_ptr<ResponseMeasure> make_response_measure(const Plan& plan, const Case& the_case) {
+MeasuredRealisations measured_realisations(const Plan& plan, const Case& the_case, int lag_samples) {
+    const Spectrum::Realisations sent = the_case.stimulus->spectrum().realisations;
+    if (sent.count == 1) return {0, judged_samples(plan, the_case), 1};
+    // Where the pairs of AlignedPass begin and end, as indices of the reference: before its own start it is silent.
+    const std::int64_t discarded = first_judged_sample(plan, the_case);
+    const std::int64_t begin = discarded > 0 ? discarded + std::max(-lag_samples, 0) : -lag_samples;
+    const std::int64_t end = returned_samples(plan, the_case) - std::max(lag_samples, 0);
+    // check() holds a realisation to whole cycles of the rate, so all return as many as the first.
+    const CaseRates rates(plan, the_case);
+    const std::int64_t first = rates.returned(sent.first_sample);
+    const std::int64_t samples = std::max<std::int64_t>(rates.returned(sent.samples), 1);
+    const std::int64_t skipped = begin > first ? (begin - first + samples - 1) / samples : 0;
+    // All that is left has the phases of the last one.
+    if (skipped >= sent.count) return {0, std::max<std::int64_t>(end - begin, 0), 1};
+    const std::int64_t whole = std::min(sent.count, (end - first) / samples) - skipped;
+    return {first + skipped * samples - begin, samples, std::max<std::int64_t>(whole, 1)};
+}
+
+std::unique_ptr<ResponseMeasure> make_response_measure(const Plan& plan, const Case& the_case, int lag_samples) {
     const Spectrum spectrum = measured_spectrum(plan, the_case);
-    const std::int64_t length = judged_samples(plan, the_case);
-    if (!spectrum.tones.empty()) return make_tone_response(spectrum.tones, length);
-    return make_welch_response(response_segment_for(length));
+    if (spectrum.tones.empty()) return make_welch_response(response_segment_for(judged_samples(plan, the_case)));
+    const MeasuredRealisations parts = measured_realisations(plan, the_case, lag_samples);
+    return make_tone_response(spectrum.tones, parts.samples, parts.count, parts.leading);
 }
 
 std::vector<double> answerable_hz(const ResponseBand& band, const Plan& plan, const Case& the_case) {
@@ -99,7 +117,7 @@ public:
         : rule_(rule),
           asked_(asked),
           channel_(channel),
-          measure_(make_response_measure(channel.plan, channel.the_case)) {}
+          measure_(make_response_measure(channel.plan, channel.the_case, channel.lag_samples)) {}
 
     void add(const AlignedBlock& block) override {
         error_.resize(block.values.size());

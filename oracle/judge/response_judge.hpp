@@ -14,11 +14,25 @@ namespace halflsb {
 
 /// What a response is measured by: the tones only where nothing continuous is beside them. Noise or a chirp answers for
 /// each bin of a band; a sine added to it would leave the rest of the band unjudged. In cycles per returned sample;
-/// what lies above their half stays there, as if it had no image.
+/// what lies above their half stays there, as if it had no image. Its realisations stay those that are sent.
 Spectrum measured_spectrum(const Plan& plan, const Case& the_case);
 
-/// Tones alone are measured at their frequencies over all judged samples, everything else by Welch's method.
-std::unique_ptr<ResponseMeasure> make_response_measure(const Plan& plan, const Case& the_case);
+/// The stretches that tones are measured in, as they stand in what is judged. In returned samples.
+struct MeasuredRealisations {
+    std::int64_t leading = 0;  ///< judged before the first of them
+    std::int64_t samples = 0;  ///< of each
+    std::int64_t count = 1;
+    bool operator==(const MeasuredRealisations&) const = default;
+};
+
+/// With one realisation: all judged samples. Else those that are judged from their first sample to their last, counted
+/// where the stimulus' own borders are, so a discard, a lag or a late start moves none of them into a stretch's middle:
+/// what is cut is passed over. When only the end of the last is left, or none is whole, that much of one.
+MeasuredRealisations measured_realisations(const Plan& plan, const Case& the_case, int lag_samples = 0);
+
+/// Tones alone are measured at their frequencies, realisation by realisation, everything else by Welch's method.
+/// `lag_samples` is that at which stimulus and error are added.
+std::unique_ptr<ResponseMeasure> make_response_measure(const Plan& plan, const Case& the_case, int lag_samples = 0);
 
 /// Frequencies in Hz at which this case can answer for the band, edges included; empty when its stimulus
 /// has no power there or no bin falls into the band.

@@ -41,6 +41,7 @@ struct JudgedChannel {
     const Case& the_case;
     int channel;            ///< counted from 1
     DerivedLimits derived;  ///< asked_limits() of the channel
+    int lag_samples = 0;    ///< of the pass that adds to it
 
     bool is_driven() const { return halflsb::is_driven(the_case, channel); }
 };

@@ -62,10 +62,11 @@ std::unique_ptr<ResponseMeasure> make_welch_response(std::size_t segment);
 
 /// One point per tone, ascending, by correlation with a Hann window over each realisation: so many samples in which
 /// the tones keep their phases, one after the other, `realisations` in all. The tones must be resolved (below) in
-/// one. Samples beyond the last count nothing, nor does a realisation that is cut, unless there is no other. Cost:
-/// about four multiply-adds a sample and tone.
+/// one. `leading` samples before the first and those beyond the last count nothing, nor does a realisation that is cut,
+/// unless there is no other. Cost: about four multiply-adds a sample and tone.
 std::unique_ptr<ResponseMeasure> make_tone_response(std::vector<double> tones_cycles_per_sample,
-                                                    std::int64_t realisation_samples, std::int64_t realisations = 1);
+                                                    std::int64_t realisation_samples, std::int64_t realisations = 1,
+                                                    std::int64_t leading = 0);
 
 /// Whether a Hann window over that many samples keeps the tones apart: each at least 4 / length from
 /// every other, from 0 and from 1/2. Its side lobes are then below -50 dB (Harris 1978), so a tone

@@ -35,8 +35,9 @@ struct Tone {
 // A part of the sums is a realisation.
 class ToneResponse final : public ResponseMeasure {
 public:
-    ToneResponse(std::vector<double> tones, std::int64_t realisation, std::int64_t realisations)
-        : length_(std::max<std::int64_t>(realisation, 1)),
+    ToneResponse(std::vector<double> tones, std::int64_t realisation, std::int64_t realisations, std::int64_t leading)
+        : leading_left_(std::max<std::int64_t>(leading, 0)),
+          length_(std::max<std::int64_t>(realisation, 1)),
           realisations_left_(std::max<std::int64_t>(realisations, 1)),
           tones_(tones.size()),
           sums_{ascending(std::move(tones)), BatchSums(tones_.size())} {
@@ -53,7 +54,8 @@ public:
     }
 
     void add(std::span<const double> stimulus, std::span<const double> error) override {
-        std::size_t done = 0;
+        auto done = static_cast<std::size_t>(std::min(leading_left_, static_cast<std::int64_t>(stimulus.size())));
+        leading_left_ -= static_cast<std::int64_t>(done);
         while (done < stimulus.size() && realisations_left_ > 0) {
             const auto to_end = static_cast<std::size_t>(length_ - first_) - filled_;
             const std::size_t count = std::min({stimulus.size() - done, stretch_samples - filled_, to_end});
@@ -124,7 +126,7 @@ private:
         }
     }
 
-    std::int64_t length_, realisations_left_;
+    std::int64_t leading_left_, length_, realisations_left_;
     std::vector<Tone> tones_;
     std::array<Complex, stretch_samples> window_turn_{};
     std::int64_t first_ = 0;  ///< index of the first held sample in its realisation
@@ -136,8 +138,10 @@ private:
 }  // namespace
 
 std::unique_ptr<ResponseMeasure> make_tone_response(std::vector<double> tones_cycles_per_sample,
-                                                    std::int64_t realisation_samples, std::int64_t realisations) {
-    return std::make_unique<ToneResponse>(std::move(tones_cycles_per_sample), realisation_samples, realisations);
+                                                    std::int64_t realisation_samples, std::int64_t realisations,
+                                                    std::int64_t leading) {
+    return std::make_unique<ToneResponse>(std::move(tones_cycles_per_sample), realisation_samples, realisations,
+                                          leading);
 }
 
 bool tones_resolved(const std::vector<double>& tones_cycles_per_sample, std::int64_t length_samples) {

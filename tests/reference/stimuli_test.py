@@ -5,6 +5,7 @@ usage: stimuli_test.py PRINT_STIMULI
 
 import io
 import random
+import struct
 import subprocess
 import sys
 from fractions import Fraction
@@ -58,8 +59,8 @@ def philox(counter, key):
     return c
 
 
-def bits(seed, purpose, index):
-    words = philox([index // 2 & MASK, index // 2 >> 32, purpose, 0], [seed & MASK, seed >> 32])
+def bits(seed, purpose, index, stream=0):
+    words = philox([index // 2 & MASK, index // 2 >> 32, purpose, stream], [seed & MASK, seed >> 32])
     pair = [words[0] | words[1] << 32, words[2] | words[3] << 32]
     return pair[index % 2]
 
@@ -135,6 +136,8 @@ SAME_CODES = {
     ("sine", "q31", 9_999_990_000): 0xf654c48e8e6489c3,
     ("sine", "q15", 0): 0x90b15188bc0750de,
     ("multitone", "q31", 5_000_000_000): 0x14ded7e4cf11ec64,
+    ("sine realised", "q31", 9_989_998_624): 0xf3eea8faa2840d9c,
+    ("multitone realised", "q31", 9_989_998_624): 0x68e44310cdee0bc2,
     ("linear chirp 0.1 to 600.0 Hz", "q31", 33_333_333): 0x96aa14d5ace61eba,
     ("linear chirp 20000.0 to 20.0 Hz", "q15", 0): 0xeb54a9f1c16abe49,
     ("logarithmic chirp 0.1 to 600.0 Hz", "q31", 99_999_300): 0x829fd7631e881931,
@@ -197,6 +200,42 @@ def test_tones():
         compare("multitone", "multitone", rate, 5_000_000_000, 1500,
                 dict(length_samples=10**10, frequencies_hz=",".join(map(repr, tones)), level_ratio=0.8, seed=seed),
                 multitone, format_name)
+
+
+def test_realisations():
+    """Stretches of floor(own / realisations), the rest in the phases of the last. Each counts its own index from 0;
+    the first begins as the tone would, a later one at 64 bits drawn for its number and the frequency's bits."""
+    rate, length, at, count, seed = 48000.0, 10**10, 123, 1000, 2**52 + 77
+    each = (length - at) // count
+    assert each == 9_999_999 and (length - at) % count == 877
+    def start(frequency, realisation, first):
+        if realisation == 0:
+            return first
+        (frequency_bits,) = struct.unpack("<Q", struct.pack("<d", frequency))
+        return mpf(bits(seed, 1, frequency_bits, realisation)) / 2**64
+    def sum_of(tones, firsts):
+        def ratio(n):
+            if n < at:
+                return mpf(0)
+            realisation = min((n - at) // each, count - 1)
+            index = n - at - realisation * each
+            total = sum(mp.sin(2 * mp.pi * (mpf(f) / mpf(rate) * index + start(f, realisation, first)))
+                        for f, first in zip(tones, firsts))
+            return mpf(0.8) * total / len(tones)
+        return ratio
+    tones = [100.0, 250.5, 1234.5, 19999.9, 24000.0]
+    shapes = {"sine": (dict(frequency_hz=997.1, phase_turns=0.0), sum_of([997.1], [mpf(0)])),
+              "multitone": (dict(frequencies_hz=",".join(map(repr, tones))),
+                            sum_of(tones, [mpf(bits(seed, 1, k)) / 2**64 for k in range(len(tones))]))}
+    # The start, the first border, one in the middle, the last, and the samples that are left over.
+    borders = [0, at + each - 600, at + 500 * each - 1, at + 999 * each - 500, length - 900]
+    for shape, (parameters, ratio) in shapes.items():
+        for first in borders:
+            for format_name in ("q15", "q31"):
+                compare(f"{shape} realised", shape, rate, first, 1500 if first == borders[3] else 800,
+                        dict(parameters, length_samples=length, at_samples=at, realisations=count, level_ratio=0.8,
+                             seed=seed),
+                        ratio, format_name)
 
 
 def linear_phase(f0, f1, rate, length, n):
@@ -547,6 +586,7 @@ def main():
     test_exact_math(rng)
     test_quantile(rng)
     test_tones()
+    test_realisations()
     test_chirps()
     test_chirps_against_scipy()
     test_noise()

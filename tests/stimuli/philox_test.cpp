@@ -24,14 +24,16 @@ TEST_CASE("philox: a sequence is the pairs one after the other, low word first",
     }
 }
 
-TEST_CASE("philox: seed, purpose and every part of the index lead elsewhere", "[stimuli]") {
+TEST_CASE("philox: seed, purpose, stream and every part of the index lead elsewhere", "[stimuli]") {
     std::set<std::uint64_t> seen;
     std::size_t drawn = 0;
     for (const std::uint64_t seed : {0ULL, 1ULL, 1ULL << 32, 1ULL << 52}) {
         for (const auto purpose : {RandomPurpose::noise, RandomPurpose::phases}) {
-            for (const std::uint64_t index : {0ULL, 1ULL, 2ULL, 1ULL << 33, 1ULL << 34}) {
-                seen.insert(random_bits(seed, purpose, index));
-                ++drawn;
+            for (const std::uint32_t stream : {0U, 1U, 1U << 31}) {
+                for (const std::uint64_t index : {0ULL, 1ULL, 2ULL, 1ULL << 33, 1ULL << 34}) {
+                    seen.insert(random_bits(seed, purpose, index, stream));
+                    ++drawn;
+                }
             }
         }
     }
