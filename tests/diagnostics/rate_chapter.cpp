@@ -36,6 +36,10 @@ void show_plans(Page& page) {
     parts.filter = fir_by_4;
     parts.rule = response;
     show_plan(page, "a response of a decimator from noise", parts.text());
+    parts.stimulus = "shape = \"sine\"\nlength_samples = 4096\nfrequency_hz = 50\nrealisations = 10\n";
+    show_plan(page, "a response of a decimator from realisations that are no multiple", parts.text());
+    parts = Parts{};
+    parts.rule = response;
     parts.filter = times_3 + "[[filter]]\n" + fir_by_4;
     show_plan(page, "a response where the rate goes up and down", parts.text());
 }

@@ -37,6 +37,9 @@ const std::vector<Body> bodies = {
     {"a response of tones that lie too close",
      "shape = \"multitone\"\nlength_samples = 256\nfrequencies_hz = [50, 51]\n",
      "[[case.rule]]\nkind = \"response\"\nbands = [{ from_hz = 40, to_hz = 90, max_db = 1 }]\n"},
+    {"a response of tones that lie too close in a realisation",
+     "shape = \"multitone\"\nlength_samples = 4096\nfrequencies_hz = [50, 60]\nrealisations = 16\n",
+     "[[case.rule]]\nkind = \"response\"\nbands = [{ from_hz = 40, to_hz = 90, max_db = 1 }]\n"},
     {"two latencies", noise,
      "[[case.rule]]\nkind = \"latency\"\nlatency_samples = 0\n[[case.rule]]\nkind = \"latency\"\nlatency_samples = "
      "1\n"},

@@ -195,10 +195,25 @@ TEST_CASE("response: no error gives a difference of exactly 0, no stimulus none 
     }
 }
 
+TEST_CASE("response: samples before the first realisation and behind the last count nothing", "[measure]") {
+    const auto x = noise(5000, 1008), e = noise(5000, 1009);
+    const auto all = points_of(*make_tone_response({0.3, 0.1}, 300, 10, 777), x, e);
+    const auto bare = points_of(*make_tone_response({0.3, 0.1}, 300, 10), std::span(x).subspan(777, 3000),
+                                std::span(e).subspan(777, 3000));
+    REQUIRE(all.size() == 2);
+    for (std::size_t k = 0; k < 2; ++k) {
+        CHECK(all[k].difference == bare[k].difference);
+        CHECK(all[k].averages == 10);
+    }
+}
+
 TEST_CASE("response: any split gives the same figures, bit for bit", "[measure]") {
     const auto x = noise(10007, 1006), e = noise(10007, 1007);
     for (const auto& make : {std::function([] { return make_welch_response(1024); }),
                              std::function([] { return make_welch_response(64); }), std::function([] {
+                                 return make_tone_response({0.3, 0.1}, 300, 20, 1001);
+                             }),
+                             std::function([] {
                                  return make_tone_response({0.3, 0.1}, 10007);
                              })}) {
         const auto whole = points_of(*make(), x, e);
