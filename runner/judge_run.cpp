@@ -6,6 +6,7 @@
 
 #include "oracle/judge/case_judge.hpp"
 #include "oracle/judge/case_rates.hpp"
+#include "oracle/judge/rule_kinds.hpp"
 #include "runner/record/capture_file.hpp"
 #include "runner/report/people.hpp"
 #include "runner/world/interrupt.hpp"
@@ -86,11 +87,14 @@ Outcome<void> check_question(const RecordedRun& record, const Plan& plan, const 
         return refused("it was captured with settings " + text_of(recorded.settings) + ", the plan says " +
                        text_of(the_case.settings));
     }
-    if (the_case.stimulus->length_samples() != recorded.stimulus.samples) {
+    const std::int64_t sent = recorded.stimulus.samples, length = the_case.stimulus->length_samples();
+    const bool may_be_shorter = may_end_early(plan, the_case) && sent > 0;
+    if (may_be_shorter ? sent > length : sent != length) {
         return refused(counted(recorded.stimulus.samples, "sample was", "samples were") +
-                       " sent, the plan's stimulus has " + count_text(the_case.stimulus->length_samples()));
+                       " sent, the plan's stimulus has " + count_text(length) +
+                       (sent < length ? ", and its rules want all of them" : ""));
     }
-    if (stimulus_sha256(plan, the_case) != recorded.stimulus.sha256)
+    if (stimulus_sha256(plan, the_case, sent) != recorded.stimulus.sha256)
         return refused("the plan's stimulus is not the one that was sent: the SHA-256 of their codes differ");
     return {};
 }
@@ -181,12 +185,13 @@ Outcome<CaseResult> judge_capture(const RecordedRun& record, const Plan& plan, c
     if (!path) return path.error();
     auto capture = CaptureFile::open(files, *path, shown, plan.signal.output, plan.signal.channels);
     if (!capture) return capture.error();
-    const std::int64_t length = returned_samples(plan, the_case);
+    const bool ended_early = result.stimulus.samples < the_case.stimulus->length_samples();
+    const std::int64_t length = ended_early ? result.stimulus.samples : returned_samples(plan, the_case);
     if (capture->samples() != length) {
-        const bool as_sent = length == the_case.stimulus->length_samples();
+        const bool as_sent = length == result.stimulus.samples;
         return Error{ErrorKind::input, shown,
                      "it holds " + counted(capture->samples(), "sample", "samples") +
-                         (as_sent ? ", the stimulus has " : ", the plan's filter returns ") + count_text(length),
+                         (as_sent ? ", its stimulus had " : ", the plan's filter returns ") + count_text(length),
                      "the record was edited; capture anew with halflsb check"};
     }
     CaseJudge judge(plan, the_case);
@@ -196,6 +201,13 @@ Outcome<CaseResult> judge_capture(const RecordedRun& record, const Plan& plan, c
         codes.resize(static_cast<std::size_t>(std::min(block_samples, length - first) * plan.signal.channels));
         if (auto read = capture->read(first, codes); !read) return read.error();
         judge.add(codes);
+    }
+    if (ended_early && !judge.is_decided()) {
+        return Error{ErrorKind::input, to_text(the_case.position),
+                     "case '" + printable(the_case.name) + "': " + counted(length, "sample was", "samples were") +
+                         " sent of " + count_text(the_case.stimulus->length_samples()) +
+                         ", until its rules were decided; those of this plan are not",
+                     "capture anew with halflsb check"};
     }
     auto judged = judge.finish([&](std::int64_t first, std::span<Code> again) -> Outcome<void> {
         if (interrupted()) return interrupted_error("case \"" + result.name + "\"");

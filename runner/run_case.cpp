@@ -22,6 +22,7 @@ struct Passage {
     std::function<Outcome<void>(std::int64_t first_index, std::span<Code>)> fill;
     std::function<Outcome<void>(const Received&)> keep;  ///< before anything else waits
     std::function<void(std::span<const Code>)> look;     ///< once the line has work again
+    std::function<bool()> is_enough;                     ///< nothing more need be sent
 };
 
 /// A case on its way: the facts grow with every step.
@@ -45,24 +46,26 @@ public:
         return goes_on ? wire.settle() : Outcome<void>();
     }
 
-    /// Until the answer to the last sample is there.
-    Outcome<void> pass(const Passage& passage) {
+    /// Until the answer to the last sample is there. Tells how many were sent.
+    Outcome<std::int64_t> pass(Passage passage) {
         std::int64_t sent = 0, answered = 0;
         const std::int64_t sent_before = facts_.samples_sent;
         while (answered < passage.samples) {
-            if (auto queued = send_ahead(passage, sent); !queued) return queued;
+            if (auto queued = send_ahead(passage, sent); !queued) return queued.error();
             auto step = stage_.wire.advance(stage_.clock.now() + seconds(step_s));
             if (!step) return step.error();
             if (step->answered > 0) {
-                if (auto kept = passage.keep(*step); !kept) return kept;
+                if (auto kept = passage.keep(*step); !kept) return kept.error();
                 answered += step->answered;
                 facts_.samples_received += static_cast<std::int64_t>(step->samples.size() / channels_);
-                if (auto queued = send_ahead(passage, sent); !queued) return queued;
+                if (auto queued = send_ahead(passage, sent); !queued) return queued.error();
                 passage.look(step->samples);
+                // What is on its way comes back all the same.
+                if (passage.is_enough()) passage.samples = sent;
             }
             stage_.observer.progress(stage_.place, sent_before + answered, sent_samples(stage_.the_case));
         }
-        return {};
+        return passage.samples;
     }
 
 private:
@@ -95,7 +98,7 @@ Passage flush_of(const CaseStage& stage) {
                 std::fill(codes.begin(), codes.end(), silence);
                 return {};
             },
-            [](const Received&) { return Outcome<void>(); }, [](std::span<const Code>) {}};
+            [](const Received&) { return Outcome<void>(); }, [](std::span<const Code>) {}, [] { return false; }};
 }
 
 /// Streams the whole case. An Error of kind bench leaves what came until then recorded and judged by
@@ -103,23 +106,25 @@ Passage flush_of(const CaseStage& stage) {
 Outcome<void> stream(const CaseStage& stage, CaseJudge& judge, CaseResult& result) {
     Streaming streaming(stage, result.stream);
     if (auto begun = streaming.begin(); !begun) return begun;
-    if (auto flushed = streaming.pass(flush_of(stage)); !flushed) return flushed;
+    if (auto flushed = streaming.pass(flush_of(stage)); !flushed) return flushed.error();
 
     const auto digest = make_code_digest();
-    const Passage stimulus{stage.the_case.stimulus->length_samples(),
-                           [&](std::int64_t first_index, std::span<Code> codes) -> Outcome<void> {
-                               fill_case_codes(stage.plan, stage.the_case, first_index, codes);
-                               digest->add(stage.plan.signal.input, codes);
-                               return stage.sent != nullptr ? stage.sent->append(codes) : Outcome<void>();
-                           },
-                           [&](const Received& received) {
-                               result.stream.ticks_total += received.ticks_total;
-                               result.stream.ticks_largest =
-                                   std::max(result.stream.ticks_largest, received.ticks_largest);
-                               return stage.recorder.append(received.samples);
-                           },
-                           [&](std::span<const Code> response) { judge.add(response); }};
-    if (auto passed = streaming.pass(stimulus); !passed) return passed;
+    const Passage stimulus{
+        stage.the_case.stimulus->length_samples(),
+        [&](std::int64_t first_index, std::span<Code> codes) -> Outcome<void> {
+            fill_case_codes(stage.plan, stage.the_case, first_index, codes);
+            digest->add(stage.plan.signal.input, codes);
+            return stage.sent != nullptr ? stage.sent->append(codes) : Outcome<void>();
+        },
+        [&](const Received& received) {
+            result.stream.ticks_total += received.ticks_total;
+            result.stream.ticks_largest = std::max(result.stream.ticks_largest, received.ticks_largest);
+            return stage.recorder.append(received.samples);
+        },
+        [&](std::span<const Code> response) { judge.add(response); }, [&] { return judge.is_decided(); }};
+    const auto passed = streaming.pass(stimulus);
+    if (!passed) return passed.error();
+    result.stimulus.samples = *passed;
     result.stimulus.sha256 = digest->value();
     return {};
 }

@@ -43,6 +43,10 @@ void AlignedPass::finish() {
     for (const Judged& judged : judges_) judged.judge->finish();
 }
 
+bool AlignedPass::is_decided() const {
+    return std::all_of(judges_.begin(), judges_.end(), [](const Judged& judged) { return judged.judge->is_decided(); });
+}
+
 void AlignedPass::measure_judged(const ReferenceBlock& reference, std::span<const Code> response) {
     const auto count = static_cast<std::int64_t>(response.size());
     const auto unjudged = static_cast<std::size_t>(std::clamp<std::int64_t>(first_judged_ - next_index_, 0, count));

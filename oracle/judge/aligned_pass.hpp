@@ -26,6 +26,8 @@ public:
     /// No more samples follow. Once, before any verdict.
     void finish();
 
+    /// Nothing that may follow changes a verdict.
+    bool is_decided() const;
     /// On a rule of the case; none where it says nothing of this channel or is judged elsewhere (rule_kinds.hpp).
     /// `rails` are those of the reference that was added; derived limits need them.
     std::optional<RuleVerdict> verdict(const Rule& rule, const RailWatch* rails) const;

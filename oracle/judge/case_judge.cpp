@@ -3,6 +3,8 @@
 #include <algorithm>
 #include <cassert>
 
+#include "oracle/judge/rule_kinds.hpp"
+
 namespace halflsb {
 namespace {
 
@@ -68,6 +70,11 @@ void CaseJudge::add_cycles(std::span<const Code> response) {
         samples_ += returned;
         response = response.subspan(part.size());
     }
+}
+
+bool CaseJudge::is_decided() const {
+    return may_end_early(plan_, case_) && std::all_of(channels_.begin(), channels_.end(),
+                                                      [](const ChannelJudge& judge) { return judge.is_decided(); });
 }
 
 Outcome<void> CaseJudge::go_through_again(const ResponseReplay& replay) {

@@ -34,6 +34,8 @@ public:
     /// The next response samples, in order from instant 0: whole instants, a code a channel, adjacent. Where the rate
     /// changes, those of a rate cycle that is not whole yet wait for the rest of it.
     void add(std::span<const Code> response);
+    /// No verdict changes with what may follow: nothing more need be sent.
+    bool is_decided() const;
     /// After the last sample; only once. `replay` is asked only when some channel's response fits better at
     /// another lag than the expected one: the case is then gone through a second time. Fails when replay does.
     Outcome<CaseJudgement> finish(const ResponseReplay& replay);

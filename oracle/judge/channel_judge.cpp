@@ -63,6 +63,11 @@ bool ChannelJudge::latency_told() const {
            (has_evidence_ || discrimination_.smallest() >= evidence_needed_);
 }
 
+bool ChannelJudge::is_decided() const {
+    const bool latency_is_open = judged_.is_driven() && latency_rule_ != nullptr && !has_evidence_;
+    return !latency_is_open && pass_.is_decided();
+}
+
 bool ChannelJudge::begin_second_pass() {
     pass_.finish();
     if (!latency_told()) return false;

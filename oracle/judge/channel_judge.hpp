@@ -26,6 +26,8 @@ public:
     int channel() const { return judged_.channel; }
     /// The channel's next codes, in whole rate cycles (case_rates.hpp), from index 0 on.
     void add(std::span<const Code> sent, std::span<const Code> response);
+    /// Nothing that may follow changes a verdict, and the latency has been told where a rule asks.
+    bool is_decided() const;
     /// After the last sample. True when the response fits better at another lag than the expected one: all
     /// samples must then come once more, to add_again().
     bool begin_second_pass();

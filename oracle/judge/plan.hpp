@@ -85,6 +85,7 @@ struct Plan {
     FilterChain filter;  ///< as written, stages of every channel
     std::vector<Case> cases;
     Certainty certainty = {};
+    bool streams_whole = false;        ///< each stimulus to its end, also when the rules of its case are decided
     bool filter_is_unknown = false;    ///< kind = "unknown": there is no reference
     std::vector<PlanPart> parts = {};  ///< the plan first, then in the order of reading, each path once
     /// What limits were derived so far, shared by copies; never empty.

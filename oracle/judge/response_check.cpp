@@ -52,15 +52,26 @@ bool tones_are_told(const Plan& plan, const Case& the_case, const Rule& asked, c
         return false;
     }
     const MeasuredRealisations parts = measured_realisations(plan, the_case);
-    if (tones_resolved(spectrum.tones, parts.samples)) return true;
-    const bool is_one = sent.count == 1;
-    refusals.push_back(
-        {asked.position,
-         "case \"" + the_case.name + "\" is too short to keep its tones apart: " + std::to_string(parts.samples) +
-             " samples" + (is_one ? "" : " in a realisation"),
-         std::string("tones must be 4 cycles apart over the ") + (is_one ? "record" : "realisation") +
-             ", and as far from 0 and Nyquist: lengthen it" + (is_one ? "" : ", or give it fewer realisations")});
-    return false;
+    if (!tones_resolved(spectrum.tones, parts.samples)) {
+        refusals.push_back(
+            {asked.position,
+             "case \"" + the_case.name + "\" is too short to keep its tones apart: " + std::to_string(parts.samples) +
+                 " samples in a realisation",
+             "tones must be 4 cycles apart over it, and as far from 0 and Nyquist: lengthen it, or give it "
+             "fewer realisations"});
+        return false;
+    }
+    // 3 realisations give 4 degrees of freedom, whose t quantile at 1e-6 is 41.
+    constexpr std::int64_t fewest = 4;
+    if (parts.count < fewest) {
+        refusals.push_back({asked.position,
+                            "case \"" + the_case.name + "\" asks for the response of tones in " +
+                                (parts.count == 1 ? "one realisation" : std::to_string(parts.count) + " realisations") +
+                                ", and nothing says how sure their gains are: rounding repeats with the period",
+                            "give the stimulus realisations = 16, each with phases of its own"});
+        return false;
+    }
+    return true;
 }
 
 }  // namespace

@@ -1,20 +1,18 @@
 #include "oracle/judge/response_judge.hpp"
 
 #include <algorithm>
-#include <charconv>
 #include <cmath>
 
 #include "oracle/filters/filter.hpp"
 #include "oracle/judge/case_rates.hpp"
+#include "oracle/judge/clip_watch.hpp"
+#include "oracle/judge/response_band.hpp"
+#include "oracle/judge/rule_kinds.hpp"
+#include "oracle/judge/units.hpp"
+#include "oracle/measure/repeated_looks.hpp"
 
 namespace halflsb {
 namespace {
-
-std::string hz_text(double hz) {
-    char text[32];
-    const auto end = std::to_chars(text, text + sizeof text, hz, std::chars_format::general, 6).ptr;
-    return std::string(text, end) + " Hz";
-}
 
 bool within(double hz, const ResponseBand& band) {
     // A frequency that was computed as k / segment x rate may miss an edge by a rounding.
@@ -26,30 +24,6 @@ bool has_power(const Spectrum& spectrum, double cycles_per_sample) {
     return std::any_of(spectrum.bands.begin(), spectrum.bands.end(), [&](const Spectrum::Band& band) {
         return cycles_per_sample >= band.from_cycles_per_sample && cycles_per_sample <= band.to_cycles_per_sample;
     });
-}
-
-struct Extreme {
-    double gain_db;
-    double hz;
-};
-
-JudgedFigure held(const Extreme& extreme, double limit_db, bool at_least, const ResponseBand& band) {
-    JudgedFigure figure;
-    figure.name = std::string(at_least ? "lowest" : "highest") + " gain from " + hz_text(band.from_hz) + " to " +
-                  hz_text(band.to_hz);
-    figure.limit = judged(limit_db);
-    figure.unit = "dB";
-    figure.at_least = at_least;
-    const double gain_db = judged(extreme.gain_db);
-    figure.verdict = pass_or_fail(at_least ? gain_db >= *figure.limit : gain_db <= *figure.limit);
-    figure.note = "at " + hz_text(extreme.hz);
-    if (std::isfinite(gain_db)) {
-        figure.value = gain_db;
-        figure.margin = judged(at_least ? gain_db - *figure.limit : *figure.limit - gain_db);
-    } else {
-        figure.note += std::isnan(gain_db) ? ", the response is not a number" : ", no output there";
-    }
-    return figure;
 }
 
 }  // namespace
@@ -111,63 +85,153 @@ std::vector<double> answerable_hz(const ResponseBand& band, const Plan& plan, co
 
 namespace {
 
+/// Of the points of the measure those in the band that the stimulus answers for.
+std::vector<BandPoint> points_in(const ResponseBand& band, const ResponseSums& sums, const JudgedChannel& channel) {
+    const Spectrum spectrum = measured_spectrum(channel.plan, channel.the_case);
+    const FilterChain chain = chain_of(channel.plan, channel.the_case, channel.channel);
+    const double returned_hz = returned_rate_hz(channel.plan, channel.the_case);
+    const double of_sent = returned_per_sent(channel.plan, channel.the_case);
+    std::vector<BandPoint> points;
+    for (std::size_t i = 0; i < sums.cycles_per_sample.size(); ++i) {
+        const double cycles_per_sample = sums.cycles_per_sample[i], hz = cycles_per_sample * returned_hz;
+        if (!within(hz, band) || (spectrum.tones.empty() && !has_power(spectrum, cycles_per_sample))) continue;
+        points.push_back({i, hz, response_at(chain, cycles_per_sample * of_sent)});
+    }
+    return points;
+}
+
+/// Parts enough to know their spread well, or the budget: a test of fixed length would not do with fewer either.
+std::int64_t spread_samples(const ResponseMeasure& measure, std::int64_t budget) {
+    return std::min(16 * measure.part_samples(), budget);
+}
+
+/// A single look at the end where other rules hold the case until then: it need not share with others.
+RepeatedLooks looks_at(const ResponseMeasure& measure, const JudgedChannel& channel) {
+    const std::int64_t budget = judged_samples(channel.plan, channel.the_case);
+    if (!may_end_early(channel.plan, channel.the_case)) return {budget, 1, budget};
+    return {spread_samples(measure, budget), measure.part_samples(), budget};
+}
+
 class ResponseJudge final : public RuleJudge {
 public:
     ResponseJudge(const ResponseRule& rule, const Rule& asked, const JudgedChannel& channel)
-        : rule_(rule),
-          asked_(asked),
-          channel_(channel),
-          measure_(make_response_measure(channel.plan, channel.the_case, channel.lag_samples)) {}
+        : asked_(asked),
+          measure_(make_response_measure(channel.plan, channel.the_case, channel.lag_samples)),
+          clips_(channel.plan.signal.output),
+          looks_(looks_at(*measure_, channel)) {
+        std::size_t decisions = 0;
+        for (const ResponseBand& band : rule.bands) {
+            auto points = points_in(band, measure_->sums(), channel);
+            if (points.empty()) {
+                without_points_.push_back("the stimulus has no power from " + hz_text(band.from_hz) + " to " +
+                                          hz_text(band.to_hz));
+                continue;
+            }
+            bands_.emplace_back(rule, band, std::move(points));
+            decisions += bands_.back().decisions();
+        }
+        shares_of_point_ = shares_of_rule(channel.plan).alpha_over(std::max<std::size_t>(decisions, 1));
+    }
 
     void add(const AlignedBlock& block) override {
+        clips_.add(block);
         error_.resize(block.values.size());
         std::transform(block.values.begin(), block.values.end(), block.reference.design.begin(), error_.begin(),
                        [](double measured, double ideal) { return measured - ideal; });
-        measure_->add(block.reference.stimulus, error_);
+        for (std::size_t done = 0; done < error_.size();) {
+            const auto left = static_cast<std::size_t>(looks_.at_samples()[next_look_] - samples_);
+            const std::size_t count = std::min(left, error_.size() - done);
+            measure_->add(block.reference.stimulus.subspan(done, count), std::span(error_).subspan(done, count));
+            samples_ += static_cast<std::int64_t>(count);
+            done += count;
+            // The last look is that of finish().
+            if (samples_ < looks_.at_samples()[next_look_]) continue;
+            if (next_look_ + 1 == looks_.at_samples().size()) return;
+            ++next_look_;
+            if (!is_decided()) look();
+        }
     }
-    void finish() override { measure_->finish(); }
+
+    /// What has clipped stays undecided, whatever follows.
+    bool is_decided() const override { return decided_after_.has_value() || clips_.count() > 0; }
+
+    void finish() override {
+        measure_->finish();
+        if (!is_decided()) look();
+    }
+
     RuleVerdict verdict(const RailWatch* rails) const override;
 
 private:
-    const ResponseRule& rule_;
+    void look() {
+        for (BandDecision& band : bands_)
+            band.look(measure_->sums(), shares_of_point_.over_looks(looks_.at_samples().size()));
+        if (verdict_so_far() != Verdict::undecided) decided_after_ = samples_;
+    }
+    Verdict verdict_so_far() const {
+        Verdict worst = Verdict::pass;
+        for (const BandDecision& band : bands_) {
+            if (band.verdict() == Verdict::fail) return Verdict::fail;
+            if (band.verdict() == Verdict::undecided) worst = Verdict::undecided;
+        }
+        return worst;
+    }
+    std::string why_undecided() const;
+
     const Rule& asked_;
-    JudgedChannel channel_;
     std::unique_ptr<ResponseMeasure> measure_;
+    ClipWatch clips_;
+    RepeatedLooks looks_;
+    std::size_t next_look_ = 0;
+    std::int64_t samples_ = 0;
+    std::optional<std::int64_t> decided_after_;  ///< samples
+    ErrorShares shares_of_point_;
+    std::vector<BandDecision> bands_;
+    std::vector<std::string> without_points_;
     std::vector<double> error_;
 };
 
 RuleVerdict ResponseJudge::verdict(const RailWatch*) const {
-    const Plan& plan = channel_.plan;
-    const Case& the_case = channel_.the_case;
-    const std::vector<ResponsePoint> points = measure_->value();
-    RuleVerdict verdict{asked_, Verdict::pass, "design", {}, {}, std::nullopt};
-    const Spectrum spectrum = measured_spectrum(plan, the_case);
-    const FilterChain chain = chain_of(plan, the_case, channel_.channel);
-    const double returned_hz = returned_rate_hz(plan, the_case);
-    const double of_sent = returned_per_sent(plan, the_case);
-    for (const ResponseBand& band : rule_.bands) {
-        std::optional<Extreme> lowest, highest;
-        for (const ResponsePoint& point : points) {
-            const double hz = point.cycles_per_sample * returned_hz;
-            if (!within(hz, band) || (spectrum.tones.empty() && !has_power(spectrum, point.cycles_per_sample)))
-                continue;
-            const std::complex<double> design = response_at(chain, point.cycles_per_sample * of_sent);
-            double measured_db = gain_db(design + point.difference);
-            if (rule_.relative_to_design) measured_db -= gain_db(design);
-            // NaN must not hide behind a comparison that is false.
-            if (!lowest || !(measured_db >= lowest->gain_db)) lowest = Extreme{measured_db, hz};
-            if (!highest || !(measured_db <= highest->gain_db)) highest = Extreme{measured_db, hz};
-        }
-        if (!lowest) {
-            if (verdict.verdict == Verdict::pass) verdict.verdict = Verdict::undecided;
-            verdict.reason = "the stimulus has no power from " + hz_text(band.from_hz) + " to " + hz_text(band.to_hz);
-            continue;
-        }
-        if (band.min_db) verdict.figures.push_back(held(*lowest, *band.min_db, true, band));
-        if (band.max_db) verdict.figures.push_back(held(*highest, *band.max_db, false, band));
+    RuleVerdict verdict{asked_, verdict_so_far(), "design", {}, {}, std::nullopt};
+    const ResponseSums& sums = measure_->sums();
+    const auto samples = static_cast<double>(samples_);
+    Evidence evidence{decided_after_.value_or(samples_), looks_.at_samples().back(), 0.0};
+    for (const BandDecision& band : bands_) {
+        for (JudgedFigure& figure : band.figures(sums)) verdict.figures.push_back(std::move(figure));
+        evidence.fixed_length_samples =
+            std::max(evidence.fixed_length_samples, band.fixed_length_samples(sums, samples, shares_of_point_));
     }
-    if (worst_of(verdict.figures) == Verdict::fail) verdict.verdict = Verdict::fail;
+    if (evidence.fixed_length_samples > 0.0) {
+        evidence.fixed_length_samples =
+            judged(std::max(std::ceil(evidence.fixed_length_samples),
+                            static_cast<double>(spread_samples(*measure_, evidence.budget_samples))));
+        verdict.evidence = evidence;
+    }
+    if (clips_.count() > 0) {
+        verdict.verdict = Verdict::undecided;
+        verdict.reason = clips_.reason();
+    } else if (!without_points_.empty()) {
+        if (verdict.verdict == Verdict::pass) verdict.verdict = Verdict::undecided;
+        verdict.reason = without_points_.back();
+    } else if (verdict.verdict == Verdict::undecided) {
+        verdict.reason = why_undecided();
+    }
     return verdict;
+}
+
+std::string ResponseJudge::why_undecided() const {
+    std::size_t open = 0;
+    double needed = 0.0;
+    for (const BandDecision& band : bands_) {
+        const BandDecision::Open of_band = band.open(measure_->sums(), static_cast<double>(samples_), shares_of_point_);
+        if (of_band.is_not_a_number) return "the response holds a value that is not a finite number";
+        open += of_band.gains;
+        needed = std::max(needed, of_band.samples_needed);
+    }
+    const std::string what = std::to_string(open) + (open == 1 ? " gain" : " gains") + " too near a limit to tell";
+    if (!(needed > 0.0)) return what + ": this stimulus has no spread that says how sure they are";
+    return what + " from " + std::to_string(samples_) + " samples; about " + brief(needed) +
+           " would tell, or a wider delta_db";
 }
 
 }  // namespace

@@ -29,6 +29,8 @@ public:
     virtual ~RuleJudge() = default;
     /// The next samples that are judged, in order.
     virtual void add(const AlignedBlock& block) = 0;
+    /// Nothing that may follow changes the verdict.
+    virtual bool is_decided() const { return false; }
     /// No more samples follow. Once, before the verdict.
     virtual void finish() {}
     /// On all that was added. `rails` are those of the reference; nullptr when nobody asked for them.

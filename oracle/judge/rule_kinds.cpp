@@ -1,5 +1,8 @@
 #include "oracle/judge/rule_kinds.hpp"
 
+#include <algorithm>
+
+#include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/error_judge.hpp"
 #include "oracle/judge/exact_judge.hpp"
 #include "oracle/judge/latency_check.hpp"
@@ -31,6 +34,13 @@ WantedReferences wanted_references(const Case& the_case, int channel) {
 
 std::unique_ptr<RuleJudge> make_judge(const Rule& rule, const JudgedChannel& channel) {
     return std::visit([&](const auto& kind) { return make_judge(kind, rule, channel); }, rule.kind);
+}
+
+bool may_end_early(const Plan& plan, const Case& the_case) {
+    if (plan.streams_whole || plan.filter_is_unknown || CaseRates(plan, the_case).changes()) return false;
+    return std::all_of(the_case.rules.begin(), the_case.rules.end(), [](const Rule& rule) {
+        return std::holds_alternative<ResponseRule>(rule.kind) || std::holds_alternative<LatencyRule>(rule.kind);
+    });
 }
 
 void check(const Rule& rule, const Plan& plan, const Case& the_case, std::vector<Refusal>& refusals) {

@@ -18,6 +18,9 @@ WantedReferences wanted_references(const Case& the_case, int channel);
 /// latency itself (channel_judge.hpp) and `unchanged`, which looks at all channels (unchanged_judge.hpp). The rule must
 /// outlive its judge.
 std::unique_ptr<RuleJudge> make_judge(const Rule& rule, const JudgedChannel& channel);
+/// The plan lets a case end once its rules are decided, and each of them can be before the last sample. Not where the
+/// rate changes: the next case would begin within a rate cycle.
+bool may_end_early(const Plan& plan, const Case& the_case);
 /// Why the case cannot answer the rule. The filter is known.
 void check(const Rule& rule, const Plan& plan, const Case& the_case, std::vector<Refusal>& refusals);
 

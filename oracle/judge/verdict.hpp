@@ -48,6 +48,14 @@ struct Neighbourhood {
     std::vector<double> reference;  ///< in LSB of the output, or values for f32
 };
 
+/// What a decision took that could stop early.
+struct Evidence {
+    std::int64_t samples = 0;         ///< judged until it was decided, or in all
+    std::int64_t budget_samples = 0;  ///< those of the whole stimulus
+    /// A test of one length, fixed beforehand, with the same alpha, beta and zone needs so many.
+    double fixed_length_samples = 0.0;
+};
+
 struct RuleVerdict {
     Rule rule;
     Verdict verdict = Verdict::undecided;
@@ -57,6 +65,7 @@ struct RuleVerdict {
         reason;  ///< of an undecided one; or what the reader should know ("judged at the measured lag of 1 sample")
     std::optional<Neighbourhood> first_bad;
     int channel = 0;  ///< of the response, counted from 1; 0: the signal has only one
+    std::optional<Evidence> evidence = {};
 };
 
 /// fail > undecided > pass over the figures.

@@ -45,6 +45,8 @@ public:
     /// stimulus.size() == error.size(); consecutive samples. Any split into blocks gives the same
     /// figures, bit for bit.
     virtual void add(std::span<const double> stimulus, std::span<const double> error) = 0;
+    /// Samples that one more part of the sums takes.
+    virtual std::int64_t part_samples() const = 0;
     /// No more samples follow: what was cut at the end counts as well. Once.
     virtual void finish() = 0;
     /// Of what is whole; after finish(), of everything.

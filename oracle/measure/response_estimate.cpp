@@ -26,9 +26,12 @@ double share_squares(const BatchSums& sums, std::size_t point, double total_powe
 
 /// Batches side by side share half a segment, which the spread within them does not show: a batch of m segments has the
 /// variance m + 2 (m - 1) r of one, and 2 r more with each neighbour.
-double neighbours_share(const ResponseSums& sums) {
+///
+/// At 0 and 1/2 an offset of the board is the same in each segment: the correlation is that of the stimulus alone, the
+/// square root of the product.
+double neighbours_share(const ResponseSums& sums, bool is_real) {
     const double m = sums.segments_a_part * static_cast<double>(sums.sums.parts_a_batch());
-    const double r = sums.neighbour_correlation;
+    const double r = is_real ? std::sqrt(sums.neighbour_correlation) : sums.neighbour_correlation;
     return 1.0 + 2.0 * r / (m + 2.0 * (m - 1.0) * r);
 }
 
@@ -56,12 +59,12 @@ ResponseEstimate weighted_sum(const ResponseSums& all, std::span<const ResponseT
             const double left = 1.0 - power / totals[i].power;
             if (!(left > 0.0)) continue;  // all power in one batch: no degrees, said below
             const Complex u = sums.cross(batch, terms[i].point) - totals[i].ratio() * power;
-            rest += terms[i].weight * u / (totals[i].power * std::sqrt(left));
+            rest += terms[i].weight * u / (totals[i].power * (is_real ? left : std::sqrt(left)));
         }
         squares += is_real ? rest.real() * rest.real() : std::norm(rest) / 2.0;
     }
     const double equal_batches = 1.0 / largest_share_squares;
-    estimate.variance = squares * neighbours_share(all);
+    estimate.variance = squares * neighbours_share(all, is_real);
     estimate.degrees = (is_real ? 1.0 : 2.0) * std::max(0.0, equal_batches - 1.0);
     return estimate;
 }
@@ -122,6 +125,17 @@ ResponseEstimate estimate_from_neighbours(const ResponseSums& all, std::size_t p
     estimate.variance = squares / (2.0 * complex_degrees);
     estimate.degrees = 2.0 * complex_degrees;
     return estimate;
+}
+
+ResponseEstimate surest_estimate(const ResponseSums& all, std::size_t point) {
+    constexpr double enough_degrees = 8.0;  // their t quantile at 1e-6 is 2.7 times the normal one
+    const ResponseEstimate own = estimate_of(all, point);
+    const bool points_are_bins = all.smoothing_bins2 > 0.0;
+    // An offset of the board stands at 0 alone, and its neighbours know nothing of it.
+    const bool has_like_neighbours = points_are_bins && !real_bin(all.cycles_per_sample[point]);
+    if (own.degrees >= enough_degrees || !has_like_neighbours) return own;
+    const ResponseEstimate shared = estimate_from_neighbours(all, point);
+    return shared.degrees > own.degrees ? shared : own;
 }
 
 Interval gain_interval(Complex design, const ResponseEstimate& difference, double confidence) {

@@ -9,9 +9,10 @@
 //
 // For noise and for tones of random phase, the rest has no preferred direction in the complex plane (a shift in time
 // turns it), so the real and the imaginary part share this variance, and a batch gives two degrees of freedom; at 0 and
-// at 1/2 the spectra are real, and it gives one. Batches of unequal power count as 1 / sum (S_b / S)^2 equal ones (Kish
-// 1965). A rest that repeats exactly in each batch (the periods of one stimulus) shows no spread: periods are never
-// batches.
+// at 1/2 the spectra are real, and it gives one; power varies so much from batch to batch there that (1 - S_b / S)^2
+// stands in the place of (1 - S_b / S) (their HC3, which errs on the wide side). Batches of unequal power count as
+// 1 / sum (S_b / S)^2 equal ones (Kish 1965). A rest that repeats exactly in each batch (the periods of one stimulus)
+// shows no spread: periods are never batches.
 #pragma once
 
 #include <complex>
@@ -50,6 +51,10 @@ ResponseEstimate estimate_of(const ResponseSums& sums, std::span<const ResponseT
 /// weighted by their power; what departs from the line is taken as spread, so a response that bends within them only
 /// widens the interval. The idea is that of Pintelon and Schoukens (2012, ch. 7: local polynomial method).
 ResponseEstimate estimate_from_neighbours(const ResponseSums& sums, std::size_t point);
+
+/// The first of both that knows its spread well; which one is chosen hangs on the stimulus alone. Points that are no
+/// bins have no neighbours, and those at 0 and 1/2 none of their kind.
+ResponseEstimate surest_estimate(const ResponseSums& sums, std::size_t point);
 
 /// A range that holds the true figure as often as asked; ends may be infinite.
 struct Interval {

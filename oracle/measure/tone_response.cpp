@@ -78,6 +78,8 @@ public:
         finish_realisation();
     }
 
+    std::int64_t part_samples() const override { return length_; }
+
     const ResponseSums& sums() const override { return sums_; }
 
 private:

@@ -75,6 +75,9 @@ public:
         }
     }
 
+    // Two segments that overlap by half begin a whole segment behind the two before.
+    std::int64_t part_samples() const override { return static_cast<std::int64_t>(segment_); }
+
     const ResponseSums& sums() const override { return sums_; }
 
 private:

@@ -20,6 +20,13 @@ const Recipe& response_recipe() {
              .type = ParameterType::choice,
              .choices = {"absolute", "design"},
              .help = "Whether the limits hold for the gain itself or for its deviation from the design."},
+            {.name = "delta_db",
+             .unit = "dB",
+             .minimum = 0.001,
+             .maximum = 20.0,
+             .default_value = ResponseRule{}.delta_db,
+             .help = "Zone of indifference beyond each limit: a gain in it may be told either way. The narrower, the "
+                     "more samples it takes to tell."},
         }};
     return recipe;
 }
@@ -27,6 +34,7 @@ const Recipe& response_recipe() {
 Outcome<ResponseRule> make_response_rule(const ParameterValues& values, const RuleContext& context) {
     ResponseRule rule;
     rule.relative_to_design = values.text(response_recipe(), "relative_to") == "design";
+    rule.delta_db = *values.number(response_recipe(), "delta_db");
     const double nyquist_hz = context.rate_hz / 2.0;
     for (const auto& row : values.rows("bands")) {
         if (row.size() != 4)

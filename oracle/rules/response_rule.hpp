@@ -18,6 +18,7 @@ struct ResponseBand {
 
 struct ResponseRule {
     std::vector<ResponseBand> bands;
+    double delta_db = 0.1;  ///< zone of indifference beyond each limit
     bool relative_to_design = false;  ///< the bands limit the gain itself, or its deviation from the design
 };
 

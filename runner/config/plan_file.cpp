@@ -84,6 +84,7 @@ public:
         const ParameterValues values = top.parameters(plan_recipe());
         plan_.certainty = {*values.number(plan_recipe(), "alpha"), *values.number(plan_recipe(), "beta"),
                            *values.number(plan_recipe(), "confidence")};
+        plan_.streams_whole = values.text(plan_recipe(), "stream") == "whole";
         // All words of the top are known before the tables below are read: the trap of a top-level key
         // under a header is told by them.
         for (const std::string_view key : {"signal", "arithmetic", "filter", "rule", "case"}) top.entry(key);

@@ -48,7 +48,12 @@ const Recipe& plan_recipe() {
           .maximum = 0.999999,
           .above_minimum = true,
           .default_value = usual.confidence,
-          .help = "Of the intervals in reports; no verdict hangs on it."}}};
+          .help = "Of the intervals in reports; no verdict hangs on it."},
+         {.name = "stream",
+          .type = ParameterType::choice,
+          .choices = {"decided", "whole"},
+          .help = "Whether a case ends once all of its rules are decided, where they can be before the last sample, or "
+                  "every stimulus is streamed to its end."}}};
     return recipe;
 }
 

@@ -59,6 +59,13 @@ Json neighbourhood_json(const std::optional<Neighbourhood>& around, const Signal
     return json;
 }
 
+Json evidence_json(const std::optional<Evidence>& evidence) {
+    if (!evidence) return nullptr;
+    return {{"samples", evidence->samples},
+            {"budget_samples", evidence->budget_samples},
+            {"fixed_length_samples", number_json(evidence->fixed_length_samples)}};
+}
+
 Json rule_json(const RuleVerdict& verdict, const Signal& signal) {
     const auto* latency = std::get_if<LatencyRule>(&verdict.rule.kind);
     Json figures = Json::array();
@@ -72,6 +79,7 @@ Json rule_json(const RuleVerdict& verdict, const Signal& signal) {
             {"reason", text_json(verdict.reason)},
             {"channel", verdict.channel > 0 ? Json(verdict.channel) : Json(nullptr)},
             {"figures", std::move(figures)},
+            {"evidence", evidence_json(verdict.evidence)},
             {"first_bad", neighbourhood_json(verdict.first_bad, signal)}};
 }
 

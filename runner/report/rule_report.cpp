@@ -119,6 +119,17 @@ std::string code_cell(const std::vector<Code>& codes, std::size_t i, const Sampl
     return format.has_lsb() ? std::to_string(codes[i]) : rounded_text(value_of(format, codes[i]), 7);
 }
 
+/// Under the figures: what it took, and what it would have taken without looking early.
+std::string evidence_text(const RuleVerdict& verdict) {
+    const Evidence& evidence = *verdict.evidence;
+    const std::string length = std::isfinite(evidence.fixed_length_samples) && evidence.fixed_length_samples < 1e15
+                                   ? count_text(static_cast<std::int64_t>(evidence.fixed_length_samples))
+                                   : rounded_text(evidence.fixed_length_samples);
+    return std::string(verdict.verdict == Verdict::undecided ? "undecided after " : "decided after ") +
+           count_text(evidence.samples) + " of " + count_text(evidence.budget_samples) +
+           " samples; for a gain on its limit a test of fixed length needs " + length;
+}
+
 Ink ink_of(Verdict verdict) {
     switch (verdict) {
         case Verdict::pass:
@@ -167,6 +178,7 @@ std::string rule_block(const RuleVerdict& verdict, const Signal& signal, const T
     out += wrapped(style, asked, inner_indent);
     if (!verdict.reason.empty()) out += wrapped(style, printable_lines(verdict.reason), inner_indent);
     if (!verdict.figures.empty()) out += figure_table(verdict, style);
+    if (verdict.evidence) out += wrapped(style, evidence_text(verdict), inner_indent);
     if (verdict.first_bad) {
         const Neighbourhood& around = *verdict.first_bad;
         std::string line = "first bad sample: " + count_text(around.index);

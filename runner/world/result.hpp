@@ -52,7 +52,8 @@ struct StreamFacts {
 struct StimulusFacts {
     std::string shape;
     ParameterValues values;    ///< as the plan gave them: the recipe
-    std::int64_t samples = 0;  ///< instants
+    /// Instants; fewer than the stimulus has, where the rules were decided before its end.
+    std::int64_t samples = 0;
     std::string sha256;        ///< of the codes of all channels as NPY data; "" when not all were sent
     std::string file;          ///< below the run's folder, where the stimulus is explicit; else ""
 };

@@ -13,12 +13,11 @@ constexpr std::int64_t block_samples = 4096;
 
 }  // namespace
 
-std::string stimulus_sha256(const Plan& plan, const Case& the_case) {
+std::string stimulus_sha256(const Plan& plan, const Case& the_case, std::int64_t samples) {
     const auto digest = make_code_digest();
     std::vector<Code> codes;
-    const std::int64_t length = the_case.stimulus->length_samples();
-    for (std::int64_t first = 0; first < length; first += block_samples) {
-        codes.resize(static_cast<std::size_t>(std::min(block_samples, length - first) * plan.signal.channels));
+    for (std::int64_t first = 0; first < samples; first += block_samples) {
+        codes.resize(static_cast<std::size_t>(std::min(block_samples, samples - first) * plan.signal.channels));
         fill_case_codes(plan, the_case, first, codes);
         digest->add(plan.signal.input, codes);
     }

@@ -127,7 +127,17 @@ void show_rules(Page& page) {
         r[500] = std::bit_cast<Code>(std::numeric_limits<float>::quiet_NaN());
         return r;
     });
-    show("a response of nothing", small(bands, "shape = \"sine\"\nlength_samples = 1200\nfrequency_hz = 50\n"),
+    show("a response that was cut off", small(bands, "shape = \"noise\"\nlength_samples = 8192\n"),
+         [](std::vector<Code> r) { return r[500] = 32767, r; });
+    show("gains too near their limit for the noise of the board",
+         small("[[case.rule]]\nkind = \"response\"\nbands = [{ from_hz = 1, to_hz = 6, max_db = 0 }]\n",
+               "shape = \"noise\"\nlength_samples = 8192\n"),
+         [](std::vector<Code> r) {
+             for (std::size_t n = 0; n < r.size(); ++n) r[n] += static_cast<Code>(n * 7919 % 6007) - 3003;
+             return r;
+         });
+    show("a response of nothing",
+         small(bands, "shape = \"sine\"\nlength_samples = 1200\nfrequency_hz = 50\nrealisations = 4\n"),
          [](std::vector<Code> r) { return std::vector<Code>(r.size()); });
 }
 
@@ -163,7 +173,7 @@ void show_the_rest(Page& page) {
     page.show("an error rule of an unknown filter", judged(plan, right_response(plan)));
     plan = plan_of(page, "a band without power",
                    small("[[case.rule]]\nkind = \"response\"\nbands = [{ from_hz = 40, to_hz = 60, max_db = 1 }]\n",
-                         "shape = \"sine\"\nlength_samples = 1200\nfrequency_hz = 50\n"));
+                         "shape = \"sine\"\nlength_samples = 1200\nfrequency_hz = 50\nrealisations = 4\n"));
     for (Rule& rule : plan.cases.front().rules) {
         if (auto* response = std::get_if<ResponseRule>(&rule.kind)) response->bands.front().from_hz = 55.0;
     }

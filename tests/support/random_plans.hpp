@@ -73,7 +73,7 @@ public:
     RandomPlan plan() {
         files_ = {};
         Table top{"", &plan_recipe(), {}};
-        add_keys(top, [](const Parameter& p) { return p.required; });
+        add_keys(top, [this](const Parameter& p) { return p.required || chance(25); });
         base_ = {{top}, {}};
         base_.tables.push_back(signal());
         add_filters();

@@ -68,6 +68,37 @@ class Judge(Case):
                 self.assertEqual(json.loads(document.out)["runs"], [json.loads(written)])
                 support.shutil.rmtree(self.folder / "run")
 
+    def test_a_case_that_ended_early_is_judged_by_what_came(self):
+        cases = lambda rule: f"""[[case]]
+name = "quiet noise"
+[case.stimulus]
+shape = "noise"
+level_ratio = 0.002
+length_samples = 400000
+[[case.rule]]
+{rule}
+"""
+        band = lambda limits: f'kind = "response"\nbands = [{{ from_hz = 70.0, to_hz = 600.0, {limits} }}]\n'
+        self.captured(cases(band("max_db = -12.0")), rules="")
+        record = self.record()
+        sent = record["cases"][0]["stimulus"]["samples"]
+        self.assertLess(sent, 200000)
+        [evidence] = [rule["evidence"] for rule in record["verdict"]["cases"][0]["rules"] if rule["kind"] == "response"]
+        self.assertLessEqual(evidence["samples"], sent)
+        self.assertEqual(evidence["budget_samples"], 400000)
+        document = self.judge("--json")
+        self.assertEqual(verdict_of(document.out), verdict_of((self.folder / "run" / "run.json").read_text()))
+        # -13.15 dB at the first side lobe, and noise of some 0.05 dB.
+        failing = self.plan(cases(band("max_db = -16.0")), rules="", name="failing.toml")
+        self.assert_status(self.judge(failing), 1)
+        narrow = self.plan(cases(band("max_db = -13.1") + "delta_db = 0.001\n"), rules="", name="narrow.toml")
+        undecided = self.judge(narrow)
+        self.assert_status(undecided, 65)
+        self.assertIn(f"{sent:,} samples were sent of 400,000, until its rules were decided; those of this plan are not",
+                      undecided.err)
+        whole = self.plan(cases('kind = "error"\nmax_lsb = 0.5\n'), rules="", name="whole.toml")
+        self.refused("and its rules want all of them", words=(whole,))
+
     def test_a_record_that_was_edited_by_hand_is_refused(self):
         self.captured(faults=("A01",), status=1)
         path = self.folder / "run" / "run.json"

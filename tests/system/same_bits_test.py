@@ -39,6 +39,7 @@ name = "three tones"
 shape = "multitone"
 frequencies_hz = [10.0, 33.3, 171.0]
 level_ratio = 0.9
+realisations = 10
 length_samples = 10000
 [[case.rule]]
 kind = "response"

@@ -83,15 +83,26 @@ TEST_CASE("admission: a response rule needs power and bins in each band", "[judg
     CHECK(outside[0].problem == "the stimulus of case \"a case\" says nothing about the band 400 to 500 Hz");
     CHECK(outside[0].remedy.rfind("use noise or a chirp over that band", 0) == 0);
 
-    const auto tones =
-        values({{"frequencies_hz", std::vector<double>{50.0, 150.0}}, {"length_samples", std::int64_t{2000}}});
+    const auto tones = values({{"frequencies_hz", std::vector<double>{50.0, 150.0}},
+                               {"length_samples", std::int64_t{2000}},
+                               {"realisations", std::int64_t{4}}});
     CHECK(refused(plan, "multitone", tones, rule(149.0, 151.0)).empty());
     CHECK(refused(plan, "multitone", tones, rule(60.0, 140.0))[0].remedy ==
           "use noise or a chirp over that band, or a multitone with a tone in it");
     const auto crowded =
         values({{"frequencies_hz", std::vector<double>{50.0, 50.5}}, {"length_samples", std::int64_t{2000}}});
     CHECK(refused(plan, "multitone", crowded, rule(49.0, 51.0))[0].problem ==
-          "case \"a case\" is too short to keep its tones apart: 2000 samples");
+          "case \"a case\" is too short to keep its tones apart: 2000 samples in a realisation");
+
+    auto unsure = tones;
+    unsure.set("realisations", std::int64_t{3});
+    CHECK(
+        refused(plan, "multitone", unsure, rule(149.0, 151.0))[0].problem ==
+        "case \"a case\" asks for the response of tones in 3 realisations, and nothing says how sure their gains are: "
+        "rounding repeats with the period");
+    unsure.set("realisations", std::int64_t{1});
+    CHECK(refused(plan, "multitone", unsure, rule(149.0, 151.0))[0].remedy ==
+          "give the stimulus realisations = 16, each with phases of its own");
 
     const auto step = values({{"length_samples", std::int64_t{1000}}});
     CHECK(refused(plan, "step", step, rule(10.0, 20.0))[0].problem ==
@@ -159,11 +170,15 @@ TEST_CASE("admission: a discard leaves less to answer from, and never nothing", 
     const auto noise = values({{"length_samples", std::int64_t{164}}});
     CHECK(running("noise", noise, 100, band).empty());
     CHECK(running("noise", noise, 101, band)[0].problem == "case \"a case\" is too short for a response: 63 samples");
-    const auto tones =
-        values({{"frequencies_hz", std::vector<double>{50.0, 52.4}}, {"length_samples", std::int64_t{2500}}});
-    CHECK(running("multitone", tones, 500, band).empty());  // 2.4 Hz x 2000 / 1200 Hz = 4 cycles
-    CHECK(running("multitone", tones, 501, band)[0].problem ==
-          "case \"a case\" is too short to keep its tones apart: 1999 samples");
+    const auto tones = values({{"frequencies_hz", std::vector<double>{50.0, 52.4}},
+                               {"length_samples", std::int64_t{10000}},
+                               {"realisations", std::int64_t{5}}});
+    // 2.4 Hz x 2000 / 1200 Hz = 4 cycles; of the five realisations the first is cut, then the second too.
+    CHECK(running("multitone", tones, 2000, band).empty());
+    CHECK(
+        running("multitone", tones, 2001, band)[0].problem ==
+        "case \"a case\" asks for the response of tones in 3 realisations, and nothing says how sure their gains are: "
+        "rounding repeats with the period");
 
     CHECK(running("noise", noise, 163, test::implicit_latency()).empty());
     for (const std::int64_t all : {std::int64_t{164}, std::int64_t{165}}) {

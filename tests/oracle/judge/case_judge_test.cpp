@@ -258,6 +258,7 @@ TEST_CASE("case judge: gain against bands, from noise, chirp and multitone, on b
          values({{"from_hz", 20.0}, {"to_hz", 500.0}, {"level_ratio", 0.9}, {"length_samples", std::int64_t{40960}}})},
         {"multitone", values({{"frequencies_hz", std::vector<double>{60.0, 120.0, 300.0}},
                               {"level_ratio", 0.9},
+                              {"realisations", std::int64_t{16}},
                               {"length_samples", std::int64_t{40960}}})},
     };
     for (const auto& stimulus : stimuli) {

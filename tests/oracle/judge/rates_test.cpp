@@ -125,9 +125,12 @@ TEST_CASE("rates: the response of an interpolator is told by noise, of a decimat
     Plan up = plan_of(interpolator()), down = plan_of(decimator());
     // 3600 samples of 1200 Hz: segments of 1024 of 3600 Hz, a bin at 98.4 and 101.95 Hz, so a longer one.
     const Case noise = test::a_case(up, "noise", noise_of(40000), {});
-    const Case sine = test::a_case(
-        down, "sine",
-        test::values({{"level_ratio", 0.5}, {"frequency_hz", 100.0}, {"length_samples", std::int64_t{12000}}}), {});
+    const Case sine = test::a_case(down, "sine",
+                                   test::values({{"level_ratio", 0.5},
+                                                 {"frequency_hz", 100.0},
+                                                 {"realisations", std::int64_t{8}},
+                                                 {"length_samples", std::int64_t{12000}}}),
+                                   {});
     CHECK(judged_at_100_hz(up, up, noise) == Verdict::pass);
     CHECK(judged_at_100_hz(down, down, sine) == Verdict::pass);
     Plan louder_up = up, louder_down = down;

@@ -126,6 +126,7 @@ TEST_CASE("running: gain at tones comes from the samples after the discard alone
         const auto given = shape == "noise" ? values({{"level_ratio", 0.9}, {"length_samples", std::int64_t{40960}}})
                                             : values({{"frequencies_hz", std::vector<double>{60.0, 120.0}},
                                                       {"level_ratio", 0.9},
+                                                      {"realisations", std::int64_t{16}},
                                                       {"length_samples", std::int64_t{40960}}});
         const auto verdict = [&](double min_db, double max_db) {
             Case the_case = test::a_case(

@@ -154,6 +154,28 @@ TEST_CASE("response estimate: periods of one stimulus, and one realisation, have
     CHECK(gain_surely_above(1.0, estimate, 0.05) == 0.0);
 }
 
+TEST_CASE("response estimate: an offset of the board stands at 0 alone, and widens the interval there", "[measure]") {
+    const int boards = test::rounds_of(2000);
+    Random random(25);
+    Gaussian normal(125);
+    int held = 0;
+    for (int board = 0; board < boards; ++board) {
+        std::vector<double> x(1024), error(1024);
+        for (std::size_t n = 0; n < x.size(); ++n) {
+            x[n] = 0.9 * random.ratio();
+            error[n] = 0.01 + 0.001 * normal.next();
+        }
+        const auto measure = make_welch_response(64);
+        measure->add(x, error);
+        measure->finish();
+        const ResponseEstimate estimate = surest_estimate(measure->sums(), 0);
+        const Interval gain = gain_interval(1.0, estimate, 0.95);
+        held += gain.low <= 1.0 && 1.0 <= gain.high;
+    }
+    CHECK(held > 0.935 * boards - (boards < 2000 ? 0.05 * boards : 0.0));
+    CHECK(held < 0.985 * boards + (boards < 2000 ? 0.05 * boards : 0.0));
+}
+
 TEST_CASE("response estimate: where the stimulus has no power, nothing is said", "[measure]") {
     const std::vector<double> silence(1024, 0.0), error(1024, 0.1);
     const auto measure = make_welch_response(64);

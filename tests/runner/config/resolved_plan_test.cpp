@@ -28,8 +28,9 @@ TEST_CASE("resolved plan: includes are joined, cases expanded and defaults writt
         "[signal]\ninput = \"q15\"\nrate_hz = 1200\n",
         files);
     INFO(text);
-    CHECK(text.starts_with(
-        "title = \"CW-7 \\\"left\\\" \\\\ cell\"\nalpha = 1e-06\nbeta = 0.001\nconfidence = 0.95\n\n[signal]\n"));
+    CHECK(
+        text.starts_with("title = \"CW-7 \\\"left\\\" \\\\ cell\"\nalpha = 1e-06\nbeta = 0.001\nconfidence = "
+                         "0.95\nstream = \"decided\"\n\n[signal]\n"));
     CHECK(text.find("include") == std::string::npos);
     CHECK(text.find("each") == std::string::npos);
     CHECK(text.find("\nquantise = \"half-up\"\n") != std::string::npos);

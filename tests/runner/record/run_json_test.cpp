@@ -82,6 +82,7 @@ TEST_CASE("run.json: a case carries verdict, grade, figures, neighbours, capture
                                            {"at_least", false},
                                            {"verdict", "fail"},
                                            {"note", nullptr}});
+    CHECK(rule.at("evidence").is_null());
     CHECK(rule.at("first_bad").at("index_samples") == 1041);
     CHECK(rule.at("first_bad").at("first_index_samples") == 1039);
     CHECK(rule.at("first_bad").at("response_codes") == Json{16370, 16371, 16370, 16371, 16372});
@@ -100,10 +101,12 @@ TEST_CASE("run.json: what was not measured is null, NaN and infinity too", "[rec
     run.elapsed_s = std::nan("");
     run.signal.output = sample::f32();
     run.cases[0].stream.line_use_ratio.reset();
-    run.cases[0].rules[0].figures[0] = {"snr", std::nullopt, 60.0, std::nullopt, "dB", true, Verdict::pass, "identical"};
+    run.cases[0].rules[0].figures[0] = {"snr", std::nullopt, 60.0,          std::nullopt,
+                                        "dB",  true,         Verdict::pass, "identical"};
     JudgedFigure& figure = run.cases[1].rules[0].figures[0];
     figure.value = std::numeric_limits<double>::infinity();
     figure.margin = -std::numeric_limits<double>::infinity();
+    run.cases[1].rules[0].evidence = Evidence{65536, 1000000, std::numeric_limits<double>::infinity()};
     run.cases[1].rules[0].first_bad->reference = {std::nan("")};
     const std::string text = run_json(run, true);
     CHECK(text.find("nan") == std::string::npos);
@@ -119,6 +122,8 @@ TEST_CASE("run.json: what was not measured is null, NaN and infinity too", "[rec
     CHECK(judged.at("value").is_null());
     CHECK(judged.at("margin").is_null());
     CHECK_FALSE(judged.contains("identical"));
+    CHECK(json.at("verdict").at("cases").at(1).at("rules").at(0).at("evidence") ==
+          Json{{"samples", 65536}, {"budget_samples", 1000000}, {"fixed_length_samples", nullptr}});
     CHECK(json.at("verdict").at("cases").at(1).at("rules").at(0).at("first_bad").at("reference_value") ==
           Json::array({nullptr}));
 }

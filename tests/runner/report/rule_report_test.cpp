@@ -47,6 +47,19 @@ TEST_CASE("rule: an exact match is told by its note, not by a missing number", "
           "    snr     identical  ≥ 60 dB    none\n");
 }
 
+TEST_CASE("rule: what a decision took, and what a fixed length would have", "[report]") {
+    RuleVerdict verdict = sample::error_passed(3);
+    verdict.evidence = Evidence{65536, 1000000, 230000.0};
+    CHECK(rule_block(verdict, signal_at_1200_hz(), {})
+              .find("    decided after 65,536 of 1,000,000 samples; for a gain on its "
+                    "limit a test of\n    fixed length needs 230,000\n") != std::string::npos);
+    verdict.verdict = Verdict::undecided;
+    verdict.evidence->fixed_length_samples = 3e20;
+    CHECK(rule_block(verdict, signal_at_1200_hz(), {})
+              .find("    undecided after 65,536 of 1,000,000 samples; for a gain on its "
+                    "limit a test\n    of fixed length needs 3e+20\n") != std::string::npos);
+}
+
 TEST_CASE("rule: how sure a figure is stands behind its number", "[report]") {
     RuleVerdict verdict = sample::error_passed(3);
     verdict.verdict = Verdict::undecided;
