@@ -251,7 +251,8 @@ TEST_CASE("random plans: read, printed and read again they are the same", "[conf
                 words.insert(table.recipe == nullptr ? key.name : std::string(table.recipe->name) + " " + key.name);
         }
     }
-    CHECK(most_cases >= 8);
+    // Many cases are seldom drawn, and a tenth of the rounds may draw none of the largest.
+    CHECK(most_cases >= (test::draws_all_rounds() ? 8U : 4U));
     // Every word of the tables stands in some plan; what never does is refused always, or never tried.
     std::string unused;
     std::size_t known = 0, missing = 0;
