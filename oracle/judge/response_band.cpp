@@ -16,8 +16,6 @@ double db_of(double ratio) { return 20.0 * std::log10(ratio); }
 /// d(20 lg x) = this dx / x.
 constexpr double db_per_neper = 20.0 / std::numbers::ln10;
 
-int urgency(Verdict verdict) { return verdict == Verdict::fail ? 2 : verdict == Verdict::undecided ? 1 : 0; }
-
 }  // namespace
 
 /// Of one point, what the rule limits.
@@ -76,9 +74,7 @@ void BandDecision::look(const ResponseSums& sums, const ErrorShares& shares) {
 Verdict BandDecision::verdict() const {
     Verdict worst = Verdict::pass;
     for (const Side& side : sides_) {
-        for (const Verdict verdict : side.verdicts) {
-            if (urgency(verdict) > urgency(worst)) worst = verdict;
-        }
+        for (const Verdict verdict : side.verdicts) worst = std::max(worst, verdict);
     }
     return worst;
 }
@@ -90,10 +86,10 @@ JudgedFigure BandDecision::figure_of(const Side& side, const std::vector<Gain>& 
     for (std::size_t i = 0; i < points_.size(); ++i) {
         const double value = judged(gains[i].value_db());
         const double room = side.at_least ? value - limit : limit - value;
-        const int more = urgency(side.verdicts[i]) - urgency(side.verdicts[shown]);
         // A NaN has no room at all, and must not hide behind a comparison that is false.
         const bool tighter = !(room >= shown_room) && !std::isnan(shown_room);
-        if (i > 0 && more <= 0 && !(more == 0 && tighter)) continue;
+        const Verdict verdict = side.verdicts[i], before = side.verdicts[shown];
+        if (i > 0 && !(verdict > before || (verdict == before && tighter))) continue;
         shown = i;
         shown_room = room;
     }

@@ -170,10 +170,7 @@ private:
     }
     Verdict verdict_so_far() const {
         Verdict worst = Verdict::pass;
-        for (const BandDecision& band : bands_) {
-            if (band.verdict() == Verdict::fail) return Verdict::fail;
-            if (band.verdict() == Verdict::undecided) worst = Verdict::undecided;
-        }
+        for (const BandDecision& band : bands_) worst = std::max(worst, band.verdict());
         return worst;
     }
     std::string why_undecided() const;

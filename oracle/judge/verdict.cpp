@@ -1,5 +1,6 @@
 #include "oracle/judge/verdict.hpp"
 
+#include <algorithm>
 #include <array>
 #include <charconv>
 #include <cmath>
@@ -46,10 +47,7 @@ std::string_view name_of(CaseVerdict verdict) {
 
 Verdict worst_of(const std::vector<JudgedFigure>& figures) {
     Verdict worst = Verdict::pass;
-    for (const JudgedFigure& figure : figures) {
-        if (figure.verdict == Verdict::fail) return Verdict::fail;
-        if (figure.verdict == Verdict::undecided) worst = Verdict::undecided;
-    }
+    for (const JudgedFigure& figure : figures) worst = std::max(worst, figure.verdict);
     return worst;
 }
 

@@ -12,6 +12,7 @@
 
 namespace halflsb {
 
+/// In order: the worse, the later.
 enum class Verdict { pass, undecided, fail };
 std::string_view name_of(Verdict verdict);
 
