@@ -2,17 +2,12 @@
 
 #include <algorithm>
 #include <cmath>
-#include <type_traits>
 
 #include "oracle/judge/plan.hpp"
 #include "oracle/measure/quantile.hpp"
 
 namespace halflsb {
 namespace {
-
-template <class Kind>
-constexpr bool is_exact = std::is_same_v<Kind, ErrorRule> || std::is_same_v<Kind, LatencyRule> ||
-                          std::is_same_v<Kind, UnchangedRule> || std::is_same_v<Kind, ExactRule>;
 
 double quantile(double probability, double degrees) {
     return std::isinf(degrees) ? normal_quantile_above(probability) : student_quantile_above(probability, degrees);
@@ -21,7 +16,7 @@ double quantile(double probability, double degrees) {
 }  // namespace
 
 bool is_uncertain(const Rule& rule) {
-    return std::visit([](const auto& kind) { return !is_exact<std::decay_t<decltype(kind)>>; }, rule.kind);
+    return std::visit([](const auto& kind) { return !kind.is_exact; }, rule.kind);
 }
 
 ErrorShares shares_of_rule(const Plan& plan) {

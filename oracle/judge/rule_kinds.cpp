@@ -39,7 +39,7 @@ std::unique_ptr<RuleJudge> make_judge(const Rule& rule, const JudgedChannel& cha
 bool may_end_early(const Plan& plan, const Case& the_case) {
     if (plan.streams_whole || plan.filter_is_unknown || CaseRates(plan, the_case).changes()) return false;
     return std::all_of(the_case.rules.begin(), the_case.rules.end(), [](const Rule& rule) {
-        return std::holds_alternative<ResponseRule>(rule.kind) || std::holds_alternative<LatencyRule>(rule.kind);
+        return std::visit([](const auto& kind) { return kind.ends_early; }, rule.kind);
     });
 }
 

@@ -12,6 +12,7 @@ namespace halflsb {
 
 /// Response minus declared reference. At least one limit is set.
 struct ErrorRule {
+    static constexpr bool is_exact = true, ends_early = false;
     std::optional<Limit> largest, rms, bias;  ///< not negative; bias limits |mean|
     std::optional<double> min_snr_db;
 };

@@ -8,7 +8,9 @@
 namespace halflsb {
 
 /// The response equals what the declared arithmetic returns, bit for bit.
-struct ExactRule {};
+struct ExactRule {
+    static constexpr bool is_exact = true, ends_early = false;
+};
 
 const Recipe& exact_recipe();
 /// An Error's place is the name of the parameter to blame.

@@ -9,6 +9,7 @@ namespace halflsb {
 
 /// Whole-sample delay of the response behind the reference, exactly this many.
 struct LatencyRule {
+    static constexpr bool is_exact = true, ends_early = true;
     int expected_samples = 0;  ///< within the lag window
     bool implicit = false;     ///< the one each case has without asking
 };

@@ -17,6 +17,7 @@ struct ResponseBand {
 };
 
 struct ResponseRule {
+    static constexpr bool is_exact = false, ends_early = true;
     std::vector<ResponseBand> bands;
     double delta_db = 0.1;  ///< zone of indifference beyond each limit
     bool relative_to_design = false;  ///< the bands limit the gain itself, or its deviation from the design

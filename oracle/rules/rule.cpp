@@ -27,6 +27,16 @@ constexpr RuleKind kinds[] = {
 };
 static_assert(std::size(kinds) == std::variant_size_v<decltype(Rule::kind)>);
 
+/// "error, latency or exact"
+std::string all_kinds() {
+    std::string names;
+    for (std::size_t i = 0; i < std::size(kinds); ++i) {
+        if (i > 0) names += i + 1 == std::size(kinds) ? " or " : ", ";
+        names += kinds[i].recipe().name;
+    }
+    return names;
+}
+
 }  // namespace
 
 std::string to_text(const PlanPosition& position) {
@@ -48,8 +58,7 @@ Outcome<Rule> make_rule(std::string_view kind, const ParameterValues& values, co
     for (const RuleKind& known : kinds) {
         if (known.recipe().name == kind) return known.make(values, context);
     }
-    return refused_word("kind", "there is no rule \"" + std::string(kind) + "\"",
-                        "use error, latency, response, unchanged or exact");
+    return refused_word("kind", "there is no rule \"" + std::string(kind) + "\"", "use " + all_kinds());
 }
 
 }  // namespace halflsb

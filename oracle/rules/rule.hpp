@@ -1,5 +1,8 @@
 // The rules a plan can ask for. Closed set; each kind's words, units and ranges stand in its own file, the recipes of
 // all in rule_recipes() and nowhere else.
+//
+// A kind says two things of itself. is_exact: its figures are facts of the capture; else they are random, and it takes
+// its share of the plan's alpha. ends_early: it can be decided before the last sample.
 #pragma once
 
 #include <string_view>
