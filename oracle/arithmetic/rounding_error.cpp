@@ -8,7 +8,16 @@ namespace halflsb {
 
 namespace {
 
-RoundingError unknown_rounding() { return {-1.0, 0.5, -0.5, 0.0, false, 1.0 / 12.0}; }
+/// The most parts whose remainders are told apart: round_to_whole needs exact fractions.
+constexpr double most_parts = 0x1p40;
+
+/// Of floor(x + c) the mean grows with c, up to that of half-up: half a part above 0 where ties come up. Numbers of one
+/// part drop nothing as they are described; what is not known may have dropped a bit all the same.
+RoundingError unknown_rounding(const RoundedNumbers& numbers) {
+    const double parts = numbers.usual_parts > 0.0 ? numbers.usual_parts : numbers.parts;
+    const double highest_mean = parts <= most_parts ? 0.5 / std::max(2.0, parts) : 0.0;
+    return {-1.0, 0.5, -0.5, highest_mean, false, 1.0 / 12.0};
+}
 
 RoundingError of_real_numbers(Rounding rounding) {
     if (rounding == Rounding::floor) return {-1.0, 0.0, -0.5, -0.5, false, 1.0 / 12.0};
@@ -98,12 +107,12 @@ RoundingError operator+(const RoundingError& a, const RoundingError& b) {
 }
 
 RoundingError rounding_error(std::optional<Rounding> rounding, const RoundedNumbers& numbers) {
-    if (!rounding) return unknown_rounding();
-    // round_to_whole needs exact fractions: beyond 2^40 parts the limit of ever finer ones, which contains them.
+    if (!rounding) return unknown_rounding(numbers);
+    // Beyond that the limit of ever finer ones, which contains them.
     RoundingError error;
-    if (!(numbers.parts <= 0x1p40)) {
+    if (!(numbers.parts <= most_parts)) {
         error = of_real_numbers(*rounding);
-        if (numbers.usual_parts > 0.0 && numbers.usual_parts <= 0x1p40) {
+        if (numbers.usual_parts > 0.0 && numbers.usual_parts <= most_parts) {
             error.mean_varies = false;
             error.mean_lowest = error.mean_highest = 0.0;
             find_moments(*rounding, numbers.usual_parts, error);

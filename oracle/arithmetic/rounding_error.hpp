@@ -40,7 +40,7 @@ struct RoundedNumbers {
 };
 
 /// The ends are attained, each by one of these numbers (where parts is finite). nullopt: any rounding from floor to
-/// half-up, that is floor(x + c) with a c of 0 .. 1/2: -1 .. 1/2, mean -1/2 .. 0.
+/// half-up, that is floor(x + c) with a c of 0 .. 1/2: -1 .. 1/2, mean -1/2 .. 1 / (2 parts), at most 1/4.
 RoundingError rounding_error(std::optional<Rounding> rounding, const RoundedNumbers& numbers);
 
 /// Of numbers that are off by a little themselves, as floats are. They may crowd at multiples of some 1 / Q (a mean of

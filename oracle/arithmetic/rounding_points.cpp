@@ -8,6 +8,7 @@
 
 #include "oracle/arithmetic/cic_registers.hpp"
 #include "oracle/arithmetic/section_points.hpp"
+#include "oracle/filters/cic.hpp"
 
 namespace halflsb {
 
@@ -116,7 +117,7 @@ private:
         int bits = here_.stage.in.word.fraction_bits - here_.stage.out.word.fraction_bits;
         if (const auto* cic = std::get_if<CicDecimator>(&design)) of_discards(*cic);
         if (!here_.stage.discarded_bits.empty()) bits -= here_.stage.discarded_bits.back();
-        double parts = unlimited;
+        double parts = unlimited, usual_parts = 0.0;
         if (const auto* median = std::get_if<Median>(&design)) {
             if (median->points % 2 == 0) ++bits;
             parts = power_of_two(std::max(0, bits));
@@ -124,8 +125,13 @@ private:
             parts = power_of_two(std::max(0, bits + *cic->shift_bits));
         } else if (const auto* raised = std::get_if<CicInterpolator>(&design); raised && raised->shift_bits) {
             parts = power_of_two(std::max(0, bits + *raised->shift_bits));
+        } else {
+            // A CIC that divides in some way: its remainders are those of the divisor.
+            const auto* up = std::get_if<CicInterpolator>(&design);
+            const double divisor = up != nullptr ? divisor_of(*up) : divisor_of(std::get<CicDecimator>(design));
+            usual_parts = std::max(1.0, std::ldexp(divisor, bits));
         }
-        here_.sums.add_shortening(target, {parts, -unlimited, unlimited});
+        here_.sums.add_shortening(target, {parts, -unlimited, unlimited, usual_parts});
         here_.in_spare = 0;
     }
 

@@ -11,6 +11,24 @@ namespace {
 
 constexpr double unlimited = std::numeric_limits<double>::infinity();
 
+/// Of a double: c is a multiple of 2^-n for the least such n.
+int fraction_bits_of(double c) {
+    int exponent = 0;
+    const auto mantissa = static_cast<std::int64_t>(std::ldexp(std::frexp(c, &exponent), 53));
+    return 53 - exponent - std::countr_zero(static_cast<std::uint64_t>(mantissa));
+}
+
+/// Numbers of which nothing says how finely the firmware stores their coefficients. Taken as they are designed, they
+/// are multiples of a fraction all the same: 1/4 for a mean of four, practically none for most filters.
+RoundedNumbers designed_numbers(const std::vector<Term>& terms, int target_bits) {
+    int most = 0;
+    for (const Term& t : terms) {
+        const int of_word = t.word.fraction_bits - t.spare_bits;
+        most = std::max(most, fraction_bits_of(t.coefficient) + of_word - target_bits);
+    }
+    return {unlimited, -unlimited, unlimited, std::ldexp(1.0, std::min(most, 1000))};
+}
+
 int trailing_zeros(std::int64_t stored) { return std::countr_zero(static_cast<std::uint64_t>(stored)); }
 
 double power_of_two(int exponent) { return std::ldexp(1.0, exponent); }
@@ -66,7 +84,8 @@ void SumPoints::add_sum(std::vector<Term> terms, const SumTarget& target) {
     add_products(terms, target, accumulator, false);
     add_products(terms, target, accumulator, true);
     if (!is_known()) {
-        if (stage_.rounding_at != RoundingAt::product) add_shortening(target, {unlimited, -unlimited, unlimited});
+        if (stage_.rounding_at != RoundingAt::product)
+            add_shortening(target, designed_numbers(terms, target.fraction_bits));
         return;
     }
     RoundedNumbers numbers = numbers_of(terms, accumulator, target.fraction_bits);
@@ -91,8 +110,8 @@ void SumPoints::add_products(const std::vector<Term>& terms, const SumTarget& ta
         if (t.is_feedback != of_feedback || (!any && !stage_.coefficients_are_said)) continue;
         Term product = t;
         product.is_subtracted = false;
-        const RoundedNumbers numbers = any ? RoundedNumbers{unlimited, -unlimited, unlimited}
-                                           : numbers_of({product}, t.fraction_bits, accumulator);
+        const RoundedNumbers numbers =
+            any ? designed_numbers({product}, accumulator) : numbers_of({product}, t.fraction_bits, accumulator);
         if (numbers.parts <= 1.0) continue;
         const double step = t.is_subtracted ? -point.step : point.step;
         const RoundingError error = rounding_error(rounding_of(products), numbers).times(step);
@@ -108,7 +127,7 @@ void SumPoints::add_products(const std::vector<Term>& terms, const SumTarget& ta
 // Of a sum in an accumulator, in steps of the words that it goes to. Its remainders are multiples of the smallest power
 // of two that a term has; its range is that of its terms at the ends of their words.
 RoundedNumbers SumPoints::numbers_of(const std::vector<Term>& terms, int accumulator, int target_bits) const {
-    if (!stage_.coefficients_are_said) return {unlimited, -unlimited, unlimited};
+    if (!stage_.coefficients_are_said) return designed_numbers(terms, target_bits);
     int common = 64, usual = 128;
     double low = 0.0, high = 0.0;
     for (const Term& t : terms) {

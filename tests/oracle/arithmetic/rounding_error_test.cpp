@@ -109,9 +109,11 @@ TEST_CASE("rounding error: mean and variance are those of all remainders", "[ari
 
 TEST_CASE("rounding error: of a rounding that nobody said, and of real numbers", "[arithmetic]") {
     const RoundingError any = rounding_error(std::nullopt, {});
-    CHECK((any.lowest == -1.0 && any.highest == 0.5 && any.mean_lowest == -0.5 && any.mean_highest == 0.0));
+    CHECK((any.lowest == -1.0 && any.highest == 0.5 && any.mean_lowest == -0.5 && any.mean_highest == 0.25));
     CHECK_FALSE(any.mean_varies);
     const double infinite = std::numeric_limits<double>::infinity();
+    CHECK(rounding_error(std::nullopt, {infinite}).mean_highest == 0.0);
+    CHECK(rounding_error(std::nullopt, {infinite, -8.0, 8.0, 16.0}).mean_highest == 1.0 / 32.0);
     for (const Rounding rounding : every_rounding) {
         const RoundingError fine = rounding_error(rounding, {0x1p40}), real = rounding_error(rounding, {infinite});
         CHECK((fine.lowest >= real.lowest && fine.highest <= real.highest));
@@ -119,6 +121,25 @@ TEST_CASE("rounding error: of a rounding that nobody said, and of real numbers",
         CHECK_THAT(fine.highest, WithinAbs(real.highest, 0x1p-39));
         CHECK_THAT(fine.mean_lowest, WithinAbs(real.mean_lowest, 0x1p-39));
         CHECK_THAT(fine.variance, WithinAbs(real.variance, 0x1p-39));
+    }
+}
+
+TEST_CASE("rounding error: of a rounding that nobody said it holds for every constant that is added", "[arithmetic]") {
+    for (const int parts : {2, 3, 4, 10, 16, 1000}) {
+        const RoundingError any = rounding_error(std::nullopt, {static_cast<double>(parts)});
+        double highest_mean = -1.0;
+        // floor(x + c), c = k / (4 parts) up to 1/2; between two of them the sums are the same or in between.
+        for (int k = 0; k <= 2 * parts; ++k) {
+            double sum = 0.0;
+            for (int remainder = 0; remainder < parts; ++remainder) {
+                const int whole = (4 * remainder + k) / (4 * parts);
+                sum += whole - static_cast<double>(remainder) / parts;
+            }
+            CHECK(sum / parts >= any.mean_lowest);
+            CHECK(sum / parts <= any.mean_highest + 1e-12);
+            highest_mean = std::max(highest_mean, sum / parts);
+        }
+        if (parts % 2 == 0) CHECK_THAT(highest_mean, WithinAbs(any.mean_highest, 1e-12));
     }
 }
 
