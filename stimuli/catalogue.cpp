@@ -10,9 +10,9 @@ namespace {
 
 const std::vector<Shape>& shapes() {
     static const std::vector<Shape> all = [] {
-        std::vector<Shape> list = {step_shape(),  impulse_shape(), silence_shape(), ramp_shape(), square_shape(),
-                                   chirp_shape(), noise_shape(),   prbs_shape(),    sine_shape(), multitone_shape(),
-                                   burst_shape(), file_shape(),    sequence_shape()};
+        std::vector<Shape> list = {step_shape(),      impulse_shape(), silence_shape(), ramp_shape(),    square_shape(),
+                                   signs_shape(),     chirp_shape(),   noise_shape(),   prbs_shape(),    sine_shape(),
+                                   multitone_shape(), burst_shape(),   file_shape(),    sequence_shape()};
         for (Shape& shape : list) shape.recipe.parameters.push_back(add_parameter());
         return list;
     }();

@@ -76,6 +76,7 @@ Shape impulse_shape();
 Shape silence_shape();
 Shape ramp_shape();
 Shape square_shape();
+Shape signs_shape();
 Shape chirp_shape();
 Shape noise_shape();
 Shape prbs_shape();

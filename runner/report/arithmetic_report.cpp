@@ -192,7 +192,7 @@ std::string headroom_text(const PredictedArithmetic& told, const TextStyle& styl
     if (has_stimuli) {
         text += wrapped(style,
                         "what drives a node hardest: full scale times the signs of its impulse response, reversed, so "
-                        "many samples; the signs are in the answer of --json",
+                        "many samples; the signs are in the answer of --json, and shape = \"signs\" sends them",
                         2);
     }
     text += registers_text(told.registers, style);

@@ -16,7 +16,8 @@ const std::int64_t ten = 10;
 
 TEST_CASE("refusal: a shape nobody knows", "[stimuli]") {
     CHECK(refusal("stpe", {}) ==
-          "shape: no stimulus is called \"stpe\"\n  shapes: step, impulse, silence, ramp, square, chirp, noise, prbs, "
+          "shape: no stimulus is called \"stpe\"\n  shapes: step, impulse, silence, ramp, square, signs, chirp, noise, "
+          "prbs, "
           "sine, multitone, burst, file, sequence");
 }
 

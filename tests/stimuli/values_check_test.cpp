@@ -123,8 +123,8 @@ TEST_CASE("catalogue: every shape and parameter explains itself in one sentence"
             CHECK(parameter.choices.empty() == (parameter.type != ParameterType::choice));
         }
     }
-    CHECK(names == std::vector<std::string_view>{"step", "impulse", "silence", "ramp", "square", "chirp", "noise",
-                                                 "prbs", "sine", "multitone", "burst", "file", "sequence"});
+    CHECK(names == std::vector<std::string_view>{"step", "impulse", "silence", "ramp", "square", "signs", "chirp",
+                                                 "noise", "prbs", "sine", "multitone", "burst", "file", "sequence"});
     CHECK(find_recipe(stimulus_recipes(), "nothing") == nullptr);
 }
 
