@@ -2,6 +2,7 @@
 #include <set>
 #include <variant>
 
+#include "runner/choose_cases.hpp"
 #include "runner/cli/exit_status.hpp"
 #include "runner/cli/progress.hpp"
 #include "runner/commands.hpp"
@@ -126,9 +127,11 @@ Outcome<std::vector<RunRequest>> make_requests(PlanAndRigs files, const Options&
     auto text = desk.files.read(options.plan, largest_config_bytes);
     if (!text) return text.error();
     common.plan_text = std::move(*text);
-    auto selected = selected_cases(common.plan, options);
-    if (!selected) return selected.error();
-    common.selected = std::move(*selected);
+    auto chosen = choose_cases(common.plan, options, files.rigs);
+    if (!chosen) return chosen.error();
+    common.selected = std::move(chosen->selected);
+    common.left_out = std::move(chosen->left_out);
+    common.why_left_out = std::move(chosen->why_left_out);
     common.out = options.out;
     common.seed = options.seed;
     common.root = options.root;

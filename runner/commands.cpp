@@ -1,6 +1,5 @@
 #include "runner/commands.hpp"
 
-#include "runner/cli/case_selection.hpp"
 #include "runner/cli/exit_status.hpp"
 #include "runner/config/plan_file.hpp"
 #include "runner/config/rig_file.hpp"
@@ -58,18 +57,6 @@ std::variant<PlanAndRigs, ReadProblems> read_plan_and_rigs(const Options& option
     }
     if (!problems.texts.empty()) return problems;
     return made;
-}
-
-Outcome<std::vector<std::size_t>> selected_cases(const Plan& plan, const Options& options) {
-    std::vector<std::string> names;
-    std::vector<std::vector<std::string>> labels;
-    for (const Case& the_case : plan.cases) {
-        names.push_back(the_case.name);
-        labels.push_back(the_case.labels);
-    }
-    auto selected = select_cases(names, options.case_patterns);
-    if (!selected) return selected;
-    return select_labelled(*selected, labels, options.labels);
 }
 
 Outcome<void> check_log_path(const Options& options, const Files& files) {

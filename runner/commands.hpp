@@ -52,9 +52,6 @@ struct PlanAndRigs {
 };
 /// All files are read before anything is said or touched, so that all their problems are told at once.
 std::variant<PlanAndRigs, ReadProblems> read_plan_and_rigs(const Options& options, const Desk& desk);
-/// Which cases of the plan --case and --label select; all without them.
-Outcome<std::vector<std::size_t>> selected_cases(const Plan& plan, const Options& options);
-
 extern const char* const tool_version;
 
 }  // namespace halflsb

@@ -1,6 +1,7 @@
 // judge: saved captures again, by the plan they were made for or by another. Nothing is written, no board is touched.
 #include <variant>
 
+#include "runner/choose_cases.hpp"
 #include "runner/cli/exit_status.hpp"
 #include "runner/commands.hpp"
 #include "runner/config/plan_file.hpp"
@@ -46,10 +47,15 @@ Outcome<Question> read_question(const RecordedRun& record, const Options& option
         question.plan = std::move(*plan);
     }
     const bool some = !options.case_patterns.empty() || !options.labels.empty();
-    auto selected =
-        another_plan || some ? selected_cases(question.plan, options) : recorded_cases(record, question.plan);
-    if (!selected) return selected.error();
-    question.selected = std::move(*selected);
+    if (!another_plan && !some) {
+        auto recorded = recorded_cases(record, question.plan);
+        if (!recorded) return recorded.error();
+        question.selected = std::move(*recorded);
+        return question;
+    }
+    auto chosen = choose_cases(question.plan, options, {});
+    if (!chosen) return chosen.error();
+    question.selected = std::move(chosen->selected);
     return question;
 }
 

@@ -1,6 +1,7 @@
 // check --list: the cases that would run, on paper.
 #include <variant>
 
+#include "runner/choose_cases.hpp"
 #include "runner/commands.hpp"
 #include "runner/paper.hpp"
 #include "runner/report/people.hpp"
@@ -60,10 +61,10 @@ int list_command(const Options& options, const Desk& desk) {
                      "give one --rig"},
                     options, desk);
     }
-    const auto selected = selected_cases(plan, options);
-    if (!selected) return tell(selected.error(), options, desk);
+    const auto chosen = choose_cases(plan, options, rigs);
+    if (!chosen) return tell(chosen.error(), options, desk);
     if (interrupted()) return tell(interrupted_error(options.plan), options, desk);
-    const CaseList list = list_cases(plan, *selected, rigs.empty() ? nullptr : &rigs.front());
+    const CaseList list = list_cases(plan, chosen->selected, rigs.empty() ? nullptr : &rigs.front());
     if (desk.answer != nullptr) desk.answer->set_list(list);
     const auto written = say(desk, list_text(plan, list, rigs, style_of(desk.terminal, Stream::out, options.colour)));
     return written ? 0 : tell(written.error(), options, desk);

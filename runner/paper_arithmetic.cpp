@@ -18,25 +18,6 @@ namespace {
 constexpr std::int64_t sight_budget = std::int64_t{1} << 19;
 constexpr std::int64_t operations_for_free = 64;
 
-std::vector<PredictedAssumption> assumptions_of(const DescribedChain& chain) {
-    std::vector<PredictedAssumption> all;
-    for (std::size_t i = 0; i < chain.stages.size(); ++i) {
-        const DescribedStage& stage = chain.stages[i];
-        if (stage.number != NumberKind::integer) continue;
-        const auto& said = stage.stage.arithmetic;
-        PredictedAssumption assumed{i + 1, {}};
-        if (!stage.rounding_is_said) assumed.taken.push_back("each rounding anywhere from floor to half-up");
-        if (!said.accumulator_bits && has_word(stage.stage, "accumulator_bits"))
-            assumed.taken.push_back("an accumulator as wide as it takes");
-        if (!stage.coefficients_are_said) assumed.taken.push_back("coefficients as they are designed");
-        if (!stage.words_are_said) assumed.taken.push_back("words behind it as fine as it takes");
-        const bool saturates = i + 1 == chain.stages.size() && said.output_overflow == Overflow::saturate;
-        if (!assumed.taken.empty() && saturates) assumed.taken.push_back("an output that saturates");
-        if (!assumed.taken.empty()) all.push_back(std::move(assumed));
-    }
-    return all;
-}
-
 FilterChain with_rounding(FilterChain chain) {
     for (FilterStage& stage : chain) {
         if (!stage.arithmetic.rounding && stage.arithmetic.number != NumberKind::float32)
@@ -117,6 +98,27 @@ Plan with_rounding(Plan plan) {
 }
 
 }  // namespace
+
+std::vector<PredictedAssumption> assumptions_of(const DescribedChain& chain) {
+    std::vector<PredictedAssumption> all;
+    for (std::size_t i = 0; i < chain.stages.size(); ++i) {
+        const DescribedStage& stage = chain.stages[i];
+        if (stage.number != NumberKind::integer) continue;
+        const auto& said = stage.stage.arithmetic;
+        PredictedAssumption assumed{i + 1, {}};
+        if (!stage.rounding_is_said) assumed.taken.push_back("each rounding anywhere from floor to half-up");
+        if (!said.accumulator_bits && has_word(stage.stage, "accumulator_bits"))
+            assumed.taken.push_back("an accumulator as wide as it takes");
+        if (!stage.coefficients_are_said)
+            assumed.taken.push_back(
+                "coefficients as they are designed (where the firmware rounds them, say coefficient_fraction_bits)");
+        if (!stage.words_are_said) assumed.taken.push_back("words behind it as fine as it takes");
+        const bool saturates = i + 1 == chain.stages.size() && said.output_overflow == Overflow::saturate;
+        if (!assumed.taken.empty() && saturates) assumed.taken.push_back("an output that saturates");
+        if (!assumed.taken.empty()) all.push_back(std::move(assumed));
+    }
+    return all;
+}
 
 PredictedArithmetic predict_arithmetic(const Plan& plan, const DescribedChain& described, int channel,
                                        const std::vector<std::size_t>& selected, const std::function<bool()>& go_on) {

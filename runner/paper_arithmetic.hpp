@@ -8,6 +8,9 @@
 
 namespace halflsb {
 
+/// What is taken for the words that the plan does not say, stage by stage; none of a stage that says all.
+std::vector<PredictedAssumption> assumptions_of(const DescribedChain& chain);
+
 /// Of the plan's filter as `channel` has it; cases with a filter of their own are told by their own bounds. Costs the
 /// impulse responses of all paths for each kind of case. `go_on` is asked between cases.
 PredictedArithmetic predict_arithmetic(const Plan& plan, const DescribedChain& described, int channel,

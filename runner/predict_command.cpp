@@ -3,6 +3,7 @@
 #include <optional>
 #include <variant>
 
+#include "runner/choose_cases.hpp"
 #include "runner/commands.hpp"
 #include "runner/config/resolved_plan.hpp"
 #include "runner/paper.hpp"
@@ -33,11 +34,11 @@ int predict_command(const Options& options, const Desk& desk) {
     if (const auto* problems = std::get_if<ReadProblems>(&read)) return tell_problems(problems->texts, desk);
     const auto& [plan, rigs] = std::get<PlanAndRigs>(read);
     const Rig* rig = rigs.empty() ? nullptr : &rigs.front();
-    const auto selected = selected_cases(plan, options);
-    if (!selected) return tell(selected.error(), options, desk);
+    const auto chosen = choose_cases(plan, options, rigs);
+    if (!chosen) return tell(chosen.error(), options, desk);
     if (interrupted()) return tell(interrupted_error(options.plan), options, desk);
 
-    const Prediction prediction = predict(plan, *selected, rig, [] { return !interrupted(); });
+    const Prediction prediction = predict(plan, chosen->selected, rig, [] { return !interrupted(); });
     if (interrupted()) return tell(interrupted_error(options.plan), options, desk);
     if (desk.answer != nullptr) {
         desk.answer->set_prediction(prediction);

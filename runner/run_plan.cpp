@@ -4,10 +4,12 @@
 
 #include <algorithm>
 
+#include "oracle/judge/rule_kinds.hpp"
 #include "runner/record_case.hpp"
 #include "runner/report/junit_report.hpp"
 #include "runner/run_case.hpp"
 #include "runner/shell_words.hpp"
+#include "runner/standard_facts.hpp"
 #include "runner/wire/wire_cost.hpp"
 #include "runner/world/interrupt.hpp"
 #include "runner/world/sha256.hpp"
@@ -46,6 +48,10 @@ RunResult facts_of(const RunRequest& request, const Clock& clock) {
     run.root = request.root.value_or("");
     run.attempts_allowed = request.rig.attempts;
     for (const std::size_t index : request.selected) run.cases_planned.push_back(request.plan.cases[index].name);
+    run.may_end_early = std::any_of(request.selected.begin(), request.selected.end(), [&](std::size_t index) {
+        return may_end_early(request.plan, request.plan.cases[index]);
+    });
+    run.taken = taken_by_itself(request.plan, request.selected, request.left_out, request.why_left_out);
     return run;
 }
 

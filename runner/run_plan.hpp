@@ -23,6 +23,8 @@ struct RunRequest {
     Rig rig;
     std::string plan_text, rig_text;    ///< of both files, for the record
     std::vector<std::size_t> selected;  ///< indices of the plan's cases, ascending
+    std::vector<std::size_t> left_out;  ///< cases that the user did not take out, and why they do not run
+    std::string why_left_out;
     std::optional<Image> image;
     std::optional<std::string> out;     ///< folder of the run
     std::optional<std::uint64_t> seed;  ///< as given on the command line

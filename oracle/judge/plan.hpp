@@ -66,6 +66,8 @@ struct Case {
     std::optional<int> channel = {};     ///< the driven one, counted from 1, the others get zeros; none: all are driven
     std::optional<double> rate_hz = {};  ///< in place of the signal's
     std::optional<FilterChain> filter = {};  ///< in place of the plan's, where the rate makes another design
+    std::string purpose = {};                ///< what it is there to find, for reports; "" when the plan says nothing
+    bool is_standard = false;                ///< of the standard set: the plan has no case of its own
 };
 
 /// A file that the plan was read from: itself, what it includes, and what it names.

@@ -11,6 +11,7 @@ namespace {
 
 constexpr std::int64_t fewest_kept_samples = 1;
 constexpr std::int64_t most_kept_samples = std::int64_t{1} << 30;
+constexpr double longest_time_limit_s = 3.6e6;
 
 std::string quoted(const std::string& argument) { return "'" + printable(argument) + "'"; }
 
@@ -29,6 +30,25 @@ std::string take_rig(Options& options, const std::string& argument) {
 std::string take_label(Options& options, const std::string& argument) {
     if (argument.empty()) return "the label is empty";
     options.labels.push_back(argument);
+    return "";
+}
+
+std::string take_all(Options& options, const std::string&) {
+    options.all = true;
+    return "";
+}
+
+/// "60s", "5min", "2h"; a plain number are seconds.
+std::string take_time_limit(Options& options, const std::string& argument) {
+    double amount = 0.0;
+    const char* const end = argument.data() + argument.size();
+    const auto [stop, error] = std::from_chars(argument.data(), end, amount, std::chars_format::fixed);
+    const std::string_view unit(stop, static_cast<std::size_t>(end - stop));
+    const double unit_s = unit.empty() || unit == "s" ? 1.0 : unit == "min" ? 60.0 : unit == "h" ? 3600.0 : 0.0;
+    if (error != std::errc() || unit_s == 0.0 || !(amount > 0.0) || !(amount * unit_s <= longest_time_limit_s))
+        return quoted(argument) + " is no time: write 60s, 5min or 2h, at most 1000h";
+    options.time_limit_s = amount * unit_s;
+    options.time_limit_text = argument;
     return "";
 }
 
@@ -159,6 +179,27 @@ const std::vector<OptionSpec>& option_table() {
          "",
          {check, judge, predict},
          take_label},
+        {"--all",
+         "",
+         "",
+         "",
+         "Runs the long cases of the standard set too, those of a plan without a [[case]]",
+         {check, judge, predict},
+         {},
+         "",
+         {},
+         take_all},
+        {"--for",
+         "",
+         "TIME",
+         "as long as it takes",
+         "Only as many cases, from the first on, as this time on the wire is enough for: 60s, 5min, 2h; says what is "
+         "not covered then",
+         {check},
+         {},
+         "",
+         {},
+         take_time_limit},
         {"--list",
          "",
          "",

@@ -33,6 +33,9 @@ struct Options {
     std::vector<std::string> rigs;  ///< several only for check
     std::vector<std::string> case_patterns;
     std::vector<std::string> labels;
+    bool all = false;                    ///< the long cases of the standard set too
+    std::optional<double> time_limit_s;  ///< of --for
+    std::string time_limit_text;         ///< as typed
     bool list = false;
     bool resolved = false;
     bool json = false;

@@ -168,6 +168,7 @@ public:
         const ParameterValues values = reader_.parameters(recipe);
         read_name(values);
         Case& the_case = read_.the_case;
+        the_case.purpose = values.text(recipe, "purpose").value_or("");
         the_case.rate_hz = values.number(recipe, "rate_hz");
         the_case.labels = read_labels(reader_);
         // Known before its inner tables are read, so that a key of the case under their headers is told from

@@ -12,17 +12,22 @@
 #include "runner/config/plan_reader.hpp"
 #include "runner/config/plan_tree.hpp"
 #include "runner/config/plan_words.hpp"
+#include "runner/config/standard_set.hpp"
 #include "stimuli/number_text.hpp"
 
 namespace halflsb {
 
 namespace {
 
-/// A case's own rule takes the place of those for every case of the same kind; the latency of 0 that
-/// every case has without asking comes last.
+/// A case's own rule takes the place of those for every case of the same kind, but those of the standard set stand
+/// back; the latency of 0 that every case has without asking comes last.
 void add_common_rules(Case& the_case, const std::vector<Rule>& common, bool filter_is_unknown) {
-    const std::vector<Rule> own = the_case.rules;
     const auto kind_is = [](const Rule& a) { return [&a](const Rule& b) { return a.kind.index() == b.kind.index(); }; };
+    if (the_case.is_standard) {
+        std::erase_if(the_case.rules,
+                      [&](const Rule& rule) { return std::any_of(common.begin(), common.end(), kind_is(rule)); });
+    }
+    const std::vector<Rule> own = the_case.rules;
     for (const Rule& rule : common) {
         if (std::none_of(own.begin(), own.end(), kind_is(rule))) the_case.rules.push_back(rule);
     }
@@ -94,8 +99,13 @@ public:
         const auto filters = read_filters(context_, top, signal ? &*signal : nullptr);
         const PlanFacts facts{signal ? &*signal : nullptr, filters ? &*filters : nullptr};
         const ReadRules common = read_rules(context_, top, facts);
-        std::vector<ReadCase> cases = read_cases(top, facts);
-        check_presence(top, common);
+        std::vector<ReadCase> cases;
+        if (!lacks_cases()) {
+            cases = read_cases(top, facts);
+            check_presence(top, common);
+        } else if (signal && filters) {
+            cases = read_standard_set(top, facts);
+        }
         top.refuse_unknown_keys();
 
         if (signal && filters && common.is_clean) admit(facts, common.rules, cases);
@@ -137,13 +147,36 @@ private:
                       "give each case a name of its own; --case chooses by it");
     }
 
+    bool lacks_cases() const {
+        const TomlEntry* cases = tree_.find("case");
+        return cases == nullptr || (cases->value.kind == TomlValue::Kind::array && cases->value.items.empty());
+    }
+
+    /// The cases of a plan that has none.
+    std::vector<ReadCase> read_standard_set(TableReader& top, const PlanFacts& facts) {
+        if (facts.filters->is_unknown) {
+            top.refuse(top.place_of("case"), "the file has no [[case]]",
+                       "add one with a name, a [case.stimulus] and, unless there is a [[rule]], a [[case.rule]]; the "
+                       "standard set needs a filter that is known");
+            return {};
+        }
+        const SourceText& source =
+            included_.emplace_back(std::string(standard_set_name), standard_set_text(*facts.signal, *facts.filters));
+        const int index = problems_.add_source(source, std::string(standard_set_name));
+        auto tree = parse_document(source, "docs/plan.md", index);
+        if (const auto* problem = std::get_if<std::string>(&tree)) {
+            problems_.add_rendered(top.place(), *problem);
+            return {};
+        }
+        standard_set_ = std::get<TomlValue>(std::move(tree));
+        TableReader set(context_, standard_set_, "");
+        std::vector<ReadCase> cases = read_cases(set, facts);
+        for (ReadCase& read : cases) read.the_case.is_standard = true;
+        return cases;
+    }
+
     void check_presence(TableReader& top, const ReadRules& common) {
         const TomlEntry* cases = tree_.find("case");
-        if (cases == nullptr || (cases->value.kind == TomlValue::Kind::array && cases->value.items.empty())) {
-            top.refuse(top.place_of("case"), "the file has no [[case]]",
-                       "add one with a name, a [case.stimulus] and, unless there is a [[rule]], a [[case.rule]]");
-            return;
-        }
         const bool has_own = std::any_of(cases->value.items.begin(), cases->value.items.end(),
                                          [](const TomlValue& t) { return has_rule(t); });
         if (!common.first && !has_rule(tree_) && !has_own) {
@@ -168,6 +201,11 @@ private:
         finish_cases(context_, plan_);
         if (problems_.count() != before) return;
         settle_common_latency(plan_, common, is_whole, problems_);
+        if (!plan_.cases.empty() && plan_.cases.front().is_standard) {
+            for (const Refusal& refusal : settle_standard_rules(plan_, common))
+                problems_.add(place_of(refusal.position, problems_), refusal.problem, refusal.remedy);
+            return;
+        }
         for (const Case& the_case : plan_.cases) {
             for (const Refusal& refusal : refusals(plan_, the_case)) {
                 problems_.add(place_of(refusal.position, problems_), refusal.problem, refusal.remedy);
@@ -177,6 +215,7 @@ private:
 
     Document document_;
     std::deque<SourceText> included_;
+    TomlValue standard_set_;
     const TomlValue& tree_;
     std::string shown_name_;
     PlanOptions options_;

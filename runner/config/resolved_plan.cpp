@@ -11,6 +11,7 @@
 #include "runner/config/plan_reader.hpp"
 #include "runner/config/plan_tree.hpp"
 #include "runner/config/plan_words.hpp"
+#include "runner/config/standard_set.hpp"
 #include "runner/config/toml_text.hpp"
 
 namespace halflsb {
@@ -115,14 +116,15 @@ public:
     ResolvedPlan(const ResolvedPlan&) = delete;
     ResolvedPlan& operator=(const ResolvedPlan&) = delete;
 
-    /// Of a plan that read_plan takes.
-    std::string text() {
+    /// Of a plan that read_plan takes, which made `plan` of it.
+    std::string text(const Plan& plan) {
         join_includes(document_, context_, included_);
         TomlValue& tree = document_.tree;
         std::stable_sort(tree.entries.begin(), tree.entries.end(),
                          [](const TomlEntry& a, const TomlEntry& b) { return rank(a) < rank(b); });
         fill_top();
         fill_filters();
+        add_standard_set(plan);
         fill_rules();
         expand_cases();
         return toml_table(tree, "", {"filter", "rule", "case"});
@@ -190,6 +192,16 @@ private:
         is_taken(tree,
                  [&](ReadContext& context, TableReader& top) { filters_ = read_filters(context, top, &*signal_); });
         facts_ = {&*signal_, &*filters_};
+    }
+
+    void add_standard_set(const Plan& plan) {
+        if (!plan.cases.front().is_standard) return;
+        const SourceText& source =
+            included_.emplace_back(std::string(standard_set_name), standard_set_text(*signal_, *filters_));
+        const int index = problems_.add_source(source, std::string(standard_set_name));
+        auto set = parse_document(source, "docs/plan.md", index);
+        if (auto* tree = std::get_if<TomlValue>(&set))
+            put_standard_cases(document_.tree, std::move(*tree), plan, context_);
     }
 
     void fill_rules() {
@@ -282,7 +294,7 @@ std::variant<std::string, ReadProblems> resolved_plan(const std::string& path, c
     auto document = open_document(path, files, "docs/plan.md");
     if (auto* problems = std::get_if<ReadProblems>(&document)) return std::move(*problems);
     const std::string root = options.root.empty() ? folder_of(path) : options.root;
-    return ResolvedPlan(std::get<Document>(std::move(document)), files, options, root).text();
+    return ResolvedPlan(std::get<Document>(std::move(document)), files, options, root).text(std::get<Plan>(plan));
 }
 
 }  // namespace halflsb

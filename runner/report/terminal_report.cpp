@@ -130,6 +130,32 @@ std::string board_lines(const RunResult& run, const TextStyle& style) {
                            (signal.channels > 1 ? ", " + std::to_string(signal.channels) + " channels" : ""));
 }
 
+std::string purpose_lines(const std::vector<CasePurpose>& cases, const TextStyle& style) {
+    std::string out;
+    for (const CasePurpose& one : cases) {
+        out += wrapped(style, printable(one.name) + (one.purpose.empty() ? "" : ": " + printable(one.purpose)),
+                       field_columns);
+    }
+    return out;
+}
+
+/// What the program added and assumed, where the plan says nothing.
+std::string taken_lines(const TakenByItself& taken, const TextStyle& style) {
+    std::string out;
+    if (!taken.added.empty()) {
+        out += field(style, "standard",
+                     "the plan has no [[case]], so the standard set is run; each case is there to find");
+        out += purpose_lines(taken.added, style);
+    }
+    for (std::size_t i = 0; i < taken.assumed.size(); ++i)
+        out += field(style, i == 0 ? "assumed" : "", taken.assumed[i]);
+    if (!taken.left_out.empty()) {
+        out += field(style, "left out", printable(taken.why_left_out) + "; not covered then");
+        out += purpose_lines(taken.left_out, style);
+    }
+    return out;
+}
+
 /// The signal as the case had it, for times.
 Signal signal_of(const RunResult& run, const CaseResult& result) {
     Signal signal = run.signal;
@@ -186,10 +212,12 @@ std::string start_text(const RunResult& run, const TextStyle& style) {
 
 std::string board_text(const RunResult& run, std::optional<double> wire_s, const TextStyle& style) {
     std::string out = board_lines(run, style);
-    out += field(style, "cases",
-                 counted(static_cast<std::int64_t>(run.cases_planned.size()), "case", "cases") +
-                     (wire_s ? ", " + duration_text(*wire_s) + " on the wire" : ", time on the wire not known"));
-    return out;
+    out += field(
+        style, "cases",
+        counted(static_cast<std::int64_t>(run.cases_planned.size()), "case", "cases") +
+            (wire_s ? std::string(run.may_end_early ? ", at most " : ", ") + duration_text(*wire_s) + " on the wire"
+                    : ", time on the wire not known"));
+    return out + taken_lines(run.taken, style);
 }
 
 std::string case_text(const RunResult& run, std::size_t index, const TextStyle& style) {

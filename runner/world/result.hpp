@@ -51,11 +51,11 @@ struct StreamFacts {
 /// What was sent, so that a later judge knows whether a plan still means it.
 struct StimulusFacts {
     std::string shape;
-    ParameterValues values;    ///< as the plan gave them: the recipe
+    ParameterValues values;  ///< as the plan gave them: the recipe
     /// Instants; fewer than the stimulus has, where the rules were decided before its end.
     std::int64_t samples = 0;
-    std::string sha256;        ///< of the codes of all channels as NPY data; "" when not all were sent
-    std::string file;          ///< below the run's folder, where the stimulus is explicit; else ""
+    std::string sha256;  ///< of the codes of all channels as NPY data; "" when not all were sent
+    std::string file;    ///< below the run's folder, where the stimulus is explicit; else ""
 };
 
 /// An attempt at a case that did not give a whole capture, and after which the rig allowed another.
@@ -90,6 +90,19 @@ struct CaseResult {
     double returned_per_sent = 1.0;       ///< rate of the response over that of the stimulus
 };
 
+/// A case of the plan, and what it is there to find.
+struct CasePurpose {
+    std::string name, purpose;
+};
+
+/// What the program took upon itself where the plan says nothing.
+struct TakenByItself {
+    std::vector<CasePurpose> added;     ///< cases of the standard set that run
+    std::vector<CasePurpose> left_out;  ///< cases that do not run though nobody took them out
+    std::string why_left_out;
+    std::vector<std::string> assumed;  ///< of the arithmetic, for derived limits; sentences
+};
+
 struct Counts {
     std::size_t pass = 0, fail = 0, invalid = 0, undecided = 0, not_run = 0;
 };
@@ -104,6 +117,8 @@ struct RunResult {
     Signal signal;
     BoardFacts board;
     FirmwareCheck firmware;
+    TakenByItself taken;
+    bool may_end_early = false;  ///< some case may end before its stimulus does, once its rules are decided
     std::vector<std::string> cases_planned;  ///< names of the selected cases, in order
     std::vector<CaseResult> cases;           ///< those that ran
     std::vector<std::string> warnings;

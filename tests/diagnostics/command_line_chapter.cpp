@@ -53,6 +53,7 @@ void command_line_chapter(Page& page) {
     refused({"check", "cw7.toml"});
     refused({"check", "cw7.toml", "--rgi", "bench.toml"});
     refused({"check", "cw7.toml", "--colour-of-the-sky"});
+    refused({"check", "cw7.toml", "--rig", "bench.toml", "--for", "soon"});
     refused({"--rig", "bench.toml", "check", "cw7.toml"});
     refused({"predict", "cw7.toml", "--image", "cw7.elf"});
     refused({"check", "cw7.toml", "other.toml", "--rig", "bench.toml"});

@@ -224,6 +224,9 @@ void judge_chapter(Page& page) {
     page.show("a list with the times of two rigs",
               workshop.said_by({"check", "plan.toml", "--list", "--rig", "bench.toml", "--rig", "bench.toml"}));
     page.show("a rig that flashes, and no image", workshop.said_by({"check", "plan.toml", "--rig", "bench.toml"}));
+    page.show("time for some cases, and no rig", workshop.said_by({"check", "plan.toml", "--list", "--for", "60s"}));
+    page.show("time for no case",
+              workshop.said_by({"check", "plan.toml", "--list", "--rig", "bench.toml", "--for", "0.001s"}));
     page.show("a label that no case has", workshop.said_by({"check", "plan.toml", "--list", "--label", "slow"}));
     page.show("a label that the named case does not have",
               workshop.said_by({"check", "plan.toml", "--list", "--case", "belt noise", "--label", "quick"}));

@@ -126,6 +126,19 @@ const std::vector<Change>& changes() {
     return all;
 }
 
+void show_without_cases(Page& page) {
+    const std::string plan = good_plan.substr(0, good_plan.find("[[case]]"));
+    const std::string filter = "kind = \"fir\"\ntaps = [0.25, 0.5, 0.25]\n";
+    show_plan(page, "no case of an unknown filter",
+              spoilt(plan.substr(0, plan.find("[[rule]]")), filter, "kind = \"unknown\"\n"));
+    show_plan(page, "no case, and a rule that none of the standard set can answer",
+              spoilt(plan, filter, "kind = \"median\"\npoints = 5\n") +
+                  "[[rule]]\nkind = \"response\"\nbands = [{ from_hz = 10, to_hz = 20, max_db = 1 }]\n");
+    show_plan(page, "no case, and no limit for the filter",
+              spoilt(spoilt(plan.substr(0, plan.find("[[rule]]")), "input = \"q15\"", "input = \"i16\""),
+                     "output = \"q15\"", "output = \"q15\"\noutput_per_input = 3e-5"));
+}
+
 }  // namespace
 
 void plan_chapter(Page& page) {
@@ -138,7 +151,7 @@ void plan_chapter(Page& page) {
     show_plan(page, "an empty file", "");
     show_plan(page, "a file of comments", "# nothing\n");
     show_plan(page, "title alone", "title = \"CW-7\"\n");
-    show_plan(page, "no case", good_plan.substr(0, good_plan.find("[[case]]")));
+    show_without_cases(page);
     show_plan(page, "no rule",
               spoilt(good_plan.substr(0, good_plan.find("[[case.rule]]")),
                      "[[rule]]\nkind = \"error\"\nmax_lsb = 1.5\n", ""));

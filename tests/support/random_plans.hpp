@@ -191,6 +191,7 @@ private:
                 return toml_real(number_for(parameter));
             case ParameterType::text:
                 if (parameter.name == "file_array") return "\"h\"";
+                if (parameter.name == "signs") return "\"++-0+\"";
                 if (parameter.name == "file_layout") return "\"b0 b1 b2 a1 a2\"";
                 return text();
             case ParameterType::choice:

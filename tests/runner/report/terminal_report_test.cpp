@@ -46,6 +46,25 @@ TEST_CASE("report: the lines before the first sample say which firmware and what
           "  cases     1 case, time on the wire not known\n");
 }
 
+TEST_CASE("report: what the program added, assumed and left out stands before the first sample", "[report]") {
+    RunResult run = sample::run();
+    run.may_end_early = true;
+    run.taken.added = {{"silence", "an offset"}, {"noise", ""}};
+    run.taken.assumed = {"stage 1: an accumulator as wide as it takes"};
+    run.taken.left_out = {{"long \x1b[2J", "faults that are rare"}};
+    run.taken.why_left_out = "--all runs it too";
+    const std::string text = board_text(run, 200.0, plain());
+    CHECK(text.substr(text.find("  cases")) ==
+          "  cases     5 cases, at most 3 min 20 s on the wire\n"
+          "  standard  the plan has no [[case]], so the standard set is run; each case is\n"
+          "            there to find\n"
+          "            silence: an offset\n"
+          "            noise\n"
+          "  assumed   stage 1: an accumulator as wide as it takes\n"
+          "  left out  --all runs it too; not covered then\n"
+          "            long \\x1b[2J: faults that are rare\n");
+}
+
 TEST_CASE("report: each injection point says what it cannot show, an unknown one promises nothing", "[report]") {
     CHECK(not_seen_from("call") == "not seen there: the sampling interrupt, DMA, the converter and the analogue path");
     CHECK(not_seen_from("buffer") == "not seen there: DMA, the converter and the analogue path");
