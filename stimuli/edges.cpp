@@ -1,5 +1,5 @@
-// Step and impulse: a level from at_samples on, or in that one sample; and silence. Their spectrum is
-// empty: they are transients, with too little power in any one band to estimate a response from.
+// Step and impulse: a level from at_samples on, or in that one sample; and silence. Their spectrum
+// has no power to estimate a response from: they are transients.
 #include <algorithm>
 
 #include "stimuli/shape.hpp"
@@ -14,7 +14,7 @@ constexpr std::string_view edge_level_help =
 class Step final : public PlacedStimulus {
 public:
     using PlacedStimulus::PlacedStimulus;
-    Spectrum spectrum() const override { return {}; }
+    Spectrum spectrum() const override { return {.steady_from_sample = placement().at_samples}; }
 
 private:
     void fill_own(std::int64_t, std::span<double> ratios) const override {
@@ -25,7 +25,7 @@ private:
 class Impulse final : public PlacedStimulus {
 public:
     using PlacedStimulus::PlacedStimulus;
-    Spectrum spectrum() const override { return {}; }
+    Spectrum spectrum() const override { return {.steady_from_sample = placement().at_samples + 1}; }
 
 private:
     void fill_own(std::int64_t first_own_index, std::span<double> ratios) const override {
@@ -37,7 +37,7 @@ private:
 class Silence final : public PlacedStimulus {
 public:
     using PlacedStimulus::PlacedStimulus;
-    Spectrum spectrum() const override { return {}; }
+    Spectrum spectrum() const override { return {.steady_from_sample = 0}; }
 
 private:
     void fill_own(std::int64_t, std::span<double> ratios) const override {

@@ -59,6 +59,7 @@ StimulusOutcome make_multitone(const Recipe& recipe, const ParameterValues& valu
     if (!realisations) return realisations.error();
     Spectrum spectrum;
     spectrum.realisations = in_spectrum(*realisations, *placement);
+    spectrum.steady_from_sample = steady_from(*realisations, *placement);
     std::vector<RealisedTone> tones;
     const std::uint64_t seed = seed_of(recipe, values);
     for (const double frequency_hz : frequencies_hz) {

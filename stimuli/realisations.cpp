@@ -45,6 +45,11 @@ Spectrum::Realisations in_spectrum(const Realisations& realisations, const Place
     return {placement.at_samples, realisations.samples, realisations.count};
 }
 
+std::optional<std::int64_t> steady_from(const Realisations& realisations, const Placement& placement) {
+    if (realisations.count > 1) return std::nullopt;
+    return placement.at_samples;
+}
+
 RealisedTone::RealisedTone(const Tone& tone, double frequency_hz, std::uint64_t seed)
     : first_(tone), frequency_bits_(std::bit_cast<std::uint64_t>(frequency_hz)), seed_(seed) {}
 

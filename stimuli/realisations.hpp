@@ -38,6 +38,8 @@ Parameter realisations_parameter();
 Outcome<Realisations> realisations_of(const Recipe& recipe, const ParameterValues& values, const Placement& placement);
 /// As a measure is told of them.
 Spectrum::Realisations in_spectrum(const Realisations& realisations, const Placement& placement);
+/// Where the phases are those of one realisation to the end.
+std::optional<std::int64_t> steady_from(const Realisations& realisations, const Placement& placement);
 
 /// A tone that begins each realisation at a phase of its own: the first at that of `tone`, a later one at
 ///   2^-64 turns x number {bits of frequency_hz as a double} of (seed, purpose phases, stream = realisation).

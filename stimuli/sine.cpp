@@ -12,7 +12,9 @@ public:
          double cycles_per_sample)
         : PlacedStimulus(placement), tone_(tone), realisations_(realisations), cycles_per_sample_(cycles_per_sample) {}
     Spectrum spectrum() const override {
-        return {.tones = {cycles_per_sample_}, .realisations = in_spectrum(realisations_, placement())};
+        return {.tones = {cycles_per_sample_},
+                .realisations = in_spectrum(realisations_, placement()),
+                .steady_from_sample = steady_from(realisations_, placement())};
     }
 
 private:

@@ -34,6 +34,9 @@ struct Spectrum {
         bool operator==(const Realisations&) const = default;
     };
     Realisations realisations = {};
+    /// From this index on the stimulus is nothing but its tones and a constant; none where it never is, or where nobody
+    /// says.
+    std::optional<std::int64_t> steady_from_sample = {};
 };
 
 class Stimulus {

@@ -21,6 +21,11 @@ std::vector<double> once_only(std::vector<double> tones) {
     return single;
 }
 
+/// The later of two indices; none when either is.
+void note_steady(std::optional<std::int64_t> from, std::optional<std::int64_t>& latest) {
+    latest = from && latest ? std::optional(std::max(*from, *latest)) : std::nullopt;
+}
+
 class Sum final : public Stimulus {
 public:
     explicit Sum(std::vector<std::unique_ptr<const Stimulus>> summands) : summands_(std::move(summands)) {}
@@ -47,10 +52,14 @@ public:
     Spectrum spectrum() const override {
         Spectrum all;
         std::vector<Spectrum> lasting;
+        all.steady_from_sample = 0;
         for (const auto& summand : summands_) {
             const Spectrum each = summand->spectrum();
+            // One that ends early is silent from there on.
+            const bool is_short = summand->length_samples() < length_samples();
+            note_steady(is_short ? summand->length_samples() : each.steady_from_sample, all.steady_from_sample);
             all.bands.insert(all.bands.end(), each.bands.begin(), each.bands.end());
-            if (summand->length_samples() < length_samples()) continue;
+            if (is_short) continue;
             if (each.realisations.count > all.realisations.count) all.realisations = each.realisations;
             lasting.push_back(each);
         }
@@ -59,7 +68,10 @@ public:
             all.tones.insert(all.tones.end(), each.tones.begin(), each.tones.end());
         }
         all.bands = joined_bands(std::move(all.bands));
+        const std::size_t tones = all.tones.size();
         all.tones = once_only(std::move(all.tones));
+        // There is a tone then that is none of those that are told.
+        if (all.tones.size() != tones) all.steady_from_sample.reset();
         return all;
     }
 

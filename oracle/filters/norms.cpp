@@ -5,6 +5,7 @@
 #include <cstdint>
 
 #include "oracle/filters/filter.hpp"
+#include "oracle/filters/flush.hpp"
 #include "oracle/filters/impulse_sums.hpp"
 #include "oracle/filters/multirate_norms.hpp"
 #include "oracle/filters/rates.hpp"
@@ -14,7 +15,6 @@ namespace halflsb {
 
 namespace {
 
-constexpr std::int64_t most_samples = most_impulse_samples;
 constexpr auto piece_samples = static_cast<std::int64_t>(ImpulseRun::piece_samples);
 
 // Rounding in a tail, and the part of the bound that is not computed, are below this of the limit.
@@ -35,12 +35,12 @@ std::int64_t start_of_tail_in(const FilterChain& chain, std::size_t piece_index,
     return first;
 }
 
-std::optional<std::int64_t> flush_of_steady_rate(const FilterChain& chain, double limit) {
+std::optional<std::int64_t> flush_of_steady_rate(const FilterChain& chain, double limit, std::int64_t most) {
     // Run until the rest does not matter. That takes more samples than the answer, hence twice the most.
     ImpulseRun run(chain);
     std::vector<double> sums;
     do {
-        if (static_cast<std::int64_t>(sums.size()) * piece_samples >= 2 * most_samples) return std::nullopt;
+        if (static_cast<std::int64_t>(sums.size()) * piece_samples >= 2 * most) return std::nullopt;
         sums.push_back(sum_of_sizes(run.next()));
     } while (!(run.rest() <= slack * limit));
 
@@ -50,7 +50,7 @@ std::optional<std::int64_t> flush_of_steady_rate(const FilterChain& chain, doubl
     const std::int64_t start = start_of_tail_in(chain, piece, behind, limit);
     // The newest sample of the past is one older than the first zero.
     const std::int64_t zeros = start > 0 ? start - 1 : 0;
-    return zeros <= most_samples ? std::optional(zeros) : std::nullopt;
+    return zeros <= most ? std::optional(zeros) : std::nullopt;
 }
 
 double l1_of_steady_rate(const FilterChain& chain, double tail) {
@@ -75,9 +75,12 @@ std::optional<SplitAtMedian> split_at_median(const FilterChain& chain) {
 
 // A median moves by no more than the largest change of its inputs, and forgets after its points. So the past's share
 // may be half the limit at its input, reaching the output through what stands behind, and half of it there.
-std::optional<std::int64_t> flush_around_median(const SplitAtMedian& split, double full_scale, double half_step) {
-    const auto before = flush_samples(split.before, full_scale, 0.5 * half_step / std::max(1.0, l1_norm(split.behind)));
-    const auto behind = flush_samples(split.behind, full_scale * std::max(1.0, l1_norm(split.before)), 0.5 * half_step);
+std::optional<std::int64_t> flush_around_median(const SplitAtMedian& split, double full_scale, double half_step,
+                                                std::int64_t most) {
+    const auto before =
+        flush_samples_within(split.before, full_scale, 0.5 * half_step / std::max(1.0, l1_norm(split.behind)), most);
+    const auto behind =
+        flush_samples_within(split.behind, full_scale * std::max(1.0, l1_norm(split.before)), 0.5 * half_step, most);
     if (!before || !behind) return std::nullopt;
     const RateRatio ratio = rate_ratio(split.before);
     const std::int64_t inner = split.points - 1 + *behind;  // at the rate of the median
@@ -86,7 +89,7 @@ std::optional<std::int64_t> flush_around_median(const SplitAtMedian& split, doub
     whole.insert(whole.end(), split.behind.begin(), split.behind.end());
     const std::int64_t cycle = rate_cycle(whole).inputs;
     const std::int64_t whole_cycles = (zeros + cycle - 1) / cycle * cycle;
-    return whole_cycles <= most_samples ? std::optional(whole_cycles) : std::nullopt;
+    return whole_cycles <= most ? std::optional(whole_cycles) : std::nullopt;
 }
 
 }  // namespace
@@ -105,10 +108,17 @@ std::vector<double> impulse_response(const FilterChain& chain, std::size_t lengt
 }
 
 std::optional<std::int64_t> flush_samples(const FilterChain& chain, double full_scale, double half_step) {
-    if (const auto split = split_at_median(chain)) return flush_around_median(*split, full_scale, half_step);
+    return flush_samples_within(chain, full_scale, half_step, most_impulse_samples);
+}
+
+std::optional<std::int64_t> flush_samples_within(const FilterChain& chain, double full_scale, double half_step,
+                                                 std::int64_t most) {
+    if (const auto split = split_at_median(chain)) return flush_around_median(*split, full_scale, half_step, most);
     const double limit = half_step / full_scale * (1.0 - slack);
     if (!(limit > 0.0)) return std::nullopt;
-    return changes_rate(chain) ? flush_of_changing_rate(chain, limit) : flush_of_steady_rate(chain, limit);
+    if (!changes_rate(chain)) return flush_of_steady_rate(chain, limit, most);
+    const auto zeros = flush_of_changing_rate(chain, limit);
+    return zeros && *zeros <= most ? zeros : std::nullopt;
 }
 
 double l1_norm(const FilterChain& chain, double tail) {

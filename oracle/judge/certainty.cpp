@@ -44,13 +44,15 @@ JudgedFigure decided(std::string name, const Figure& measured, double degrees, c
     figure.value = judged(measured.value);
     figure.margin = judged(limit.at_least ? *figure.value - *figure.limit : *figure.limit - *figure.value);
     const double u = measured.standard_uncertainty;
-    if (!std::isfinite(u) || u < 0.0) {
+    if (!std::isfinite(u) || u < 0.0 || !std::isfinite(measured.bound)) {
         figure.note = "how sure it is, is not known";
         return figure;
     }
-    figure.uncertainty = judged(u);
+    figure.uncertainty = judged(std::hypot(u, measured.bound / std::sqrt(3.0)));
     // 0 times an infinite quantile: what has no spread is known, whatever the degrees.
-    const auto reach = [&](double probability) { return u > 0.0 ? judged(u * quantile(probability, degrees)) : 0.0; };
+    const auto reach = [&](double probability) {
+        return judged(measured.bound + (u > 0.0 ? u * quantile(probability, degrees) : 0.0));
+    };
     if (*figure.margin + reach(shares.alpha) < 0.0) {
         figure.verdict = Verdict::fail;
     } else if (*figure.margin + limit.zone >= reach(shares.beta)) {

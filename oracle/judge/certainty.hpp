@@ -46,7 +46,9 @@ struct FigureLimit {
 
 /// Fails when the true value surely (alpha) lies beyond the limit; passes when it surely (beta) does not lie beyond the
 /// zone; else it is undecided. An estimate with `degrees` of freedom of its uncertainty, infinite where that is known.
-/// A value or uncertainty that is no number is undecided.
+/// The bound of a figure stands beside the quantile on either side. A value or uncertainty that is no number is
+/// undecided. What is told as the uncertainty has the bound in it, as a rectangular one (over sqrt 3; JCGM 100:2008,
+/// 4.3.7, from memory).
 JudgedFigure decided(std::string name, const Figure& measured, double degrees, const FigureLimit& limit,
                      std::string unit, const ErrorShares& shares);
 

@@ -3,7 +3,10 @@
 #include <algorithm>
 #include <cmath>
 
+#include "oracle/arithmetic/declared.hpp"
+#include "oracle/filters/flush.hpp"
 #include "oracle/judge/case_rates.hpp"
+#include "oracle/judge/settling.hpp"
 
 namespace halflsb {
 namespace {
@@ -64,6 +67,25 @@ Leftover LimitStore::leftover_of(KnownChain& known, const Plan& plan, const Case
     const Leftover left = leftover(known.deriver->chain(), plan, the_case);
     known.leftovers.emplace_back(use, left);
     return left;
+}
+
+std::optional<std::int64_t> LimitStore::settling_samples(const Plan& plan, const Case& the_case, int channel,
+                                                         double full_scale, double half_step) {
+    const FilterChain chain = chain_of(plan, the_case, channel);
+    KnownChain& known = known_chain(chain, plan.signal);
+    const double ratio = half_step / full_scale;
+    for (const auto& settling : known.settlings) {
+        if (settling.ratio == ratio) return settling.samples;
+    }
+    std::optional<std::int64_t> most = 0;
+    // The board runs the rounded coefficients, whose poles may be the slower ones.
+    for (const FilterChain& run : {chain, declared_chain(chain)}) {
+        const auto samples =
+            most ? flush_samples_within(run, full_scale, half_step, longest_settling_samples) : std::nullopt;
+        most = samples ? std::optional(std::max(*most, *samples)) : std::nullopt;
+    }
+    known.settlings.push_back({ratio, most});
+    return most;
 }
 
 BoundUse LimitStore::bound_use(const Plan& plan, const Case& the_case, int channel) {

@@ -25,6 +25,9 @@ public:
     std::optional<ErrorBound> judged_bound(const Plan& plan, const Case& the_case, int channel);
     /// What the arithmetic of a channel says; nullopt where it cannot be described.
     std::optional<DescribedChain> described(const Plan& plan, const Case& the_case, int channel);
+    /// settling.hpp says of what, and what is left of it: half_step over full_scale.
+    std::optional<std::int64_t> settling_samples(const Plan& plan, const Case& the_case, int channel, double full_scale,
+                                                 double half_step);
     BoundUse bound_use(const Plan& plan, const Case& the_case, int channel);
 
 private:
@@ -34,6 +37,11 @@ private:
         double output_per_input;
         std::optional<BoundDeriver> deriver;  ///< none: cannot be described
         std::vector<std::pair<LeftoverUse, Leftover>> leftovers;
+        struct Settling {
+            double ratio;  ///< half_step over full_scale
+            std::optional<std::int64_t> samples;
+        };
+        std::vector<Settling> settlings = {};
     };
     struct KnownRms {
         std::shared_ptr<const Stimulus> stimulus;  ///< held, so that no other gets its address

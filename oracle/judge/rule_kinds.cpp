@@ -7,6 +7,8 @@
 #include "oracle/judge/exact_judge.hpp"
 #include "oracle/judge/latency_check.hpp"
 #include "oracle/judge/response_judge.hpp"
+#include "oracle/judge/tone_judge.hpp"
+#include "oracle/judge/transition_judge.hpp"
 #include "oracle/judge/unchanged_judge.hpp"
 
 namespace halflsb {

@@ -7,6 +7,9 @@ namespace halflsb {
 struct Figure {
     double value = 0.0;
     double standard_uncertainty = 0.0;
+    /// How far it may lie off beside that, the same way each time: what codes that were rounded leave open. A bound, so
+    /// no quantile widens it.
+    double bound = 0.0;
 };
 
 }  // namespace halflsb

@@ -13,7 +13,9 @@ namespace {
 using Fault = TransitionFault;
 
 TransitionFigure none(Fault fault) { return {std::nullopt, fault}; }
-TransitionFigure some(double value, double uncertainty) { return {Figure{value, uncertainty}, Fault::none}; }
+TransitionFigure some(double value, double uncertainty, double bound) {
+    return {Figure{value, uncertainty, bound}, Fault::none};
+}
 
 double mean_of(std::span<const double> samples) {
     CompensatedSum sum;
@@ -74,8 +76,6 @@ private:
 struct Doubt {
     double bound = 0.0;  ///< codes and levels: perhaps the same in each sample
     double noise = 0.0;  ///< a standard deviation, new in each sample
-
-    double both() const { return std::hypot(bound, noise); }
 };
 
 // instant_for(s) is where the response crosses a level that lies `s` further on its way; none when it does not. The
@@ -93,7 +93,7 @@ TransitionFigure with_doubt(double instant, const Doubt& doubt, InstantFor insta
         if (!early || !late) return none(Fault::too_coarse);
         noise = (*late - *early) / 8.0;
     }
-    return some(instant, std::hypot(bound, noise));
+    return some(instant, noise, bound);
 }
 
 struct Crossing {
@@ -120,16 +120,20 @@ TransitionFigure difference(const TransitionFigure& late, const TransitionFigure
     if (!early.figure) return early;
     if (!late.figure) return late;
     return some(late.figure->value - early.figure->value,
-                std::hypot(late.figure->standard_uncertainty, early.figure->standard_uncertainty));
+                std::hypot(late.figure->standard_uncertainty, early.figure->standard_uncertainty),
+                late.figure->bound + early.figure->bound);
 }
 
 TransitionFigure relative_to(const TransitionFigure& instant, std::int64_t origin) {
     if (!instant.figure) return instant;
-    return some(instant.figure->value - static_cast<double>(origin), instant.figure->standard_uncertainty);
+    return some(instant.figure->value - static_cast<double>(origin), instant.figure->standard_uncertainty,
+                instant.figure->bound);
 }
 
 // All four, from the index of the mid crossing on and back from it.
-void find_aberrations(const Course& course, std::size_t mid, double reached, double w, TransitionFigures& figures) {
+void find_aberrations(const Course& course, std::size_t mid, double reached, const Doubt& doubt,
+                      TransitionFigures& figures) {
+    const double noise = 100.0 * doubt.noise, bound = 100.0 * doubt.bound;
     double over = 0.0, under = 0.0, pre = 0.0, early = 0.0;
     bool was_there = false;
     for (std::size_t n = mid; n < course.size(); ++n) {
@@ -145,10 +149,10 @@ void find_aberrations(const Course& course, std::size_t mid, double reached, dou
         is_there = is_there || z <= reached;
         if (is_there) early = std::max(early, z);
     }
-    figures.overshoot_percent = some(100.0 * over, 100.0 * w);
-    figures.undershoot_percent = some(100.0 * under, 100.0 * w);
-    figures.preshoot_percent = some(100.0 * pre, 100.0 * w);
-    figures.early_overshoot_percent = some(100.0 * early, 100.0 * w);
+    figures.overshoot_percent = some(100.0 * over, noise, bound);
+    figures.undershoot_percent = some(100.0 * under, noise, bound);
+    figures.preshoot_percent = some(100.0 * pre, noise, bound);
+    figures.early_overshoot_percent = some(100.0 * early, noise, bound);
 }
 
 // Instant of the last entry into the band; none when the final stretch is not all inside.
@@ -181,7 +185,7 @@ TransitionFigure final_value_of(std::span<const double> stretch, double half_ban
     const double within = std::hypot(deviation_of(all.first(batches / 2)), deviation_of(all.last(batches / 2))) /
                           std::sqrt(static_cast<double>(batches / 2));
     if (change > half_band && change > 4.0 * within) return none(Fault::still_moving);
-    return some(mean_of(stretch), uncertainty);
+    return some(mean_of(stretch), uncertainty, 0.0);
 }
 
 bool is_sound(const TransitionQuestion& q, std::size_t samples) {
@@ -240,7 +244,7 @@ TransitionAnswer measure_transition(const TransitionQuestion& question, std::spa
     figures.low_instant = relative_to(low.instant, question.step_index);
     figures.high_instant = relative_to(high.instant, question.step_index);
     figures.duration_samples = difference(high.instant, low.instant);
-    find_aberrations(course, mid.index, question.lsb / amplitude, doubt.both(), figures);
+    find_aberrations(course, mid.index, question.lsb / amplitude, doubt, figures);
     figures.settling_samples = difference(settling_of(course, band, mid.index, final_samples, doubt), mid.instant);
     return {figures, Fault::none};
 }

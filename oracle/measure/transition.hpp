@@ -6,18 +6,21 @@
 // first, the 10 % instant the last one before it, the 90 % instant the first one after it. A continuous response
 // between the samples crosses within |y''| / (8 |y'|) samples of the figure (error of linear interpolation).
 //
-// Uncertainties. A sample may lie off in two ways.
-//   bound b: sqrt(lsb^2 + u^2(levels)). Whatever rounding the board has, from floor to half-up, its error is within one
-//     LSB, and it may be the same one in each sample. An instant's share is the larger distance to where the same
-//     response crosses the level - b and the level + b: b over the local slope where the response is straight, the
-//     length of the flat parts where it stands on few codes.
-//   noise s: the standard deviation of the samples before the step (of the final stretch when fewer than 16 stand
-//     there). Its share is s over the slope between the level - 4 s and the level + 4 s, as if each sample were as
-//     noisy as a line between two is not. Where s exceeds the change from one sample to the next, the first of several
-//     crossings is taken for the one, and the instant comes early by about as much as the uncertainty says.
-// The two add in squares, and so do the two ends of a duration. Where a state lies within b or 4 s of the level, there
-// is no such crossing, and no instant: `too_coarse`. Aberrations: 100 sqrt(b^2 + s^2) / amplitude; of noise alone the
-// largest of n samples lies some s sqrt(2 ln n) beyond the level.
+// Uncertainties. A sample may lie off in two ways, and a figure says both.
+//   bound b (Figure::bound): sqrt(lsb^2 + u^2(levels)). Whatever rounding the board has, from floor to half-up, its
+//   error
+//     is within one LSB, and it may be the same one in each sample. An instant's share is the larger distance to where
+//     the same response crosses the level - b and the level + b: b over the local slope where the response is straight,
+//     the length of the flat parts where it stands on few codes. Those of two ends of a duration add up.
+//   noise s (the standard uncertainty): the standard deviation of the samples before the step (of the final stretch
+//   when
+//     fewer than 16 stand there). Its share is s over the slope between the level - 4 s and the level + 4 s, as if each
+//     sample were as noisy as a line between two is not. Where s exceeds the change from one sample to the next, the
+//     first of several crossings is taken for the one, and the instant comes early by about as much as the uncertainty
+//     says. Those of two ends add in squares.
+// Where a state lies within b or 4 s of the level, there is no such crossing, and no instant: `too_coarse`.
+// Aberrations: 100 b / amplitude and 100 s / amplitude; of noise alone the largest of n samples lies some s sqrt(2 ln
+// n) beyond the level.
 //
 // The window. A whole record is held, at most transition_most_samples (8 MiB); of a longer run the caller chooses the
 // window around the step.

@@ -15,12 +15,14 @@
 #include "oracle/rules/plan_position.hpp"
 #include "oracle/rules/response_rule.hpp"
 #include "oracle/rules/rule_words.hpp"
+#include "oracle/rules/tone_rule.hpp"
+#include "oracle/rules/transition_rule.hpp"
 #include "oracle/rules/unchanged_rule.hpp"
 
 namespace halflsb {
 
 struct Rule {
-    std::variant<ErrorRule, LatencyRule, ResponseRule, UnchangedRule, ExactRule> kind;
+    std::variant<ErrorRule, LatencyRule, ResponseRule, ToneRule, TransitionRule, UnchangedRule, ExactRule> kind;
     PlanPosition position;
 };
 

@@ -56,6 +56,33 @@ const std::vector<Body> bodies = {
     {"a latency of a long case that begins in silence",
      "shape = \"impulse\"\nlength_samples = 300000\nat_samples = 299999\n",
      "[[case.rule]]\nkind = \"latency\"\nlatency_samples = 0\n"},
+    {"a tone without a limit", noise, "[[case.rule]]\nkind = \"tone\"\n"},
+    {"a tone in noise", noise, "[[case.rule]]\nkind = \"tone\"\nmin_sinad_db = 60\n"},
+    {"a tone in a short record", "shape = \"sine\"\nfrequency_hz = 50\nlength_samples = 70\n",
+     "[[case.rule]]\nkind = \"tone\"\nmin_sinad_db = 60\n"},
+    {"a tone at half the rate", "shape = \"sine\"\nfrequency_hz = 600\nphase_turns = 0.25\nlength_samples = 4096\n",
+     "[[case.rule]]\nkind = \"tone\"\nmin_sinad_db = 60\n"},
+    {"a tone that the filter takes away", "shape = \"sine\"\nfrequency_hz = 300\nlength_samples = 4096\n",
+     "[[case.rule]]\nkind = \"tone\"\nmin_sinad_db = 60\n"},
+    {"a tone whose harmonics fold onto it", "shape = \"sine\"\nfrequency_hz = 400\nlength_samples = 4096\n",
+     "[[case.rule]]\nkind = \"tone\"\nmax_thd_db = -60\n"},
+    {"a transition without a limit", noise, "[[case.rule]]\nkind = \"transition\"\n"},
+    {"a rise and a fall", "shape = \"step\"\nat_samples = 64\nlength_samples = 256\n",
+     "[[case.rule]]\nkind = \"transition\"\nmax_rise_samples = 4\nmax_fall_samples = 4\n"},
+    {"a transition of silence", "shape = \"silence\"\nlength_samples = 256\n",
+     "[[case.rule]]\nkind = \"transition\"\nmax_rise_samples = 4\n"},
+    {"a transition at once", "shape = \"step\"\nat_samples = 4\nlength_samples = 256\n",
+     "[[case.rule]]\nkind = \"transition\"\nmax_rise_samples = 4\n"},
+    {"a fall of a rising step", "shape = \"step\"\nat_samples = 64\nlength_samples = 256\n",
+     "[[case.rule]]\nkind = \"transition\"\nmax_fall_samples = 4\n"},
+    {"a rise of a falling step", "shape = \"step\"\nlevel_ratio = -0.5\nat_samples = 64\nlength_samples = 256\n",
+     "[[case.rule]]\nkind = \"transition\"\nmax_rise_samples = 4\n"},
+    {"a transition that ends at once", "shape = \"step\"\nat_samples = 64\nlength_samples = 66\n",
+     "[[case.rule]]\nkind = \"transition\"\nmax_rise_samples = 4\n"},
+    {"a transition of a few codes", "shape = \"step\"\nlevel_codes = 8\nat_samples = 64\nlength_samples = 256\n",
+     "[[case.rule]]\nkind = \"transition\"\nmax_rise_samples = 4\n"},
+    {"an overshoot of less than a code", "shape = \"step\"\nat_samples = 64\nlength_samples = 256\n",
+     "[[case.rule]]\nkind = \"transition\"\nmax_overshoot_percent = 0.001\n"},
     {"an error without a limit", noise, "[[case.rule]]\nkind = \"error\"\n"},
     {"a limit twice", noise, "[[case.rule]]\nkind = \"error\"\nmax_lsb = 1\nmax_ratio = 0.1\n"},
     {"a limit in a unit that is nowhere explained", noise, "[[case.rule]]\nkind = \"error\"\nmax_unit = 1\n"},
@@ -103,6 +130,27 @@ void rule_chapter(Page& page) {
     parts.filter = "kind = \"median\"\npoints = 5\n";
     parts.rule = "kind = \"response\"\nbands = [{ from_hz = 10, to_hz = 500, max_db = 3 }]\n";
     show_plan(page, "a response of a median", parts.text());
+    const std::string tone = "[[case.rule]]\nkind = \"tone\"\nmin_sinad_db = 60\n";
+    const std::string sine = "shape = \"sine\"\nlength_samples = 4096\nfrequency_hz = ";
+    const std::string transition = "[[case.rule]]\nkind = \"transition\"\nmax_fall_samples = 9\n";
+    const std::string square = "shape = \"square\"\nperiod_samples = 300\nlength_samples = 900\n";
+    parts = {};
+    parts.filter = "kind = \"one-pole\"\ncorner_hz = 0.0001\n";
+    parts.stimulus = sine + "50\n";
+    parts.after = tone;
+    show_plan(page, "a tone through a filter that forgets too slowly", parts.text());
+    parts.stimulus = square;
+    parts.after = transition;
+    show_plan(page, "a step down through a filter that forgets too slowly", parts.text());
+    parts.stimulus = "shape = \"step\"\nat_samples = 64\nlength_samples = 900\n";
+    parts.after = "[[case.rule]]\nkind = \"transition\"\nfinal_lsb = 9\n";
+    show_plan(page, "a step through a filter that forgets too slowly", parts.text());
+    parts.filter = "kind = \"dc-blocker\"\npole = 0.9\n";
+    show_plan(page, "a step through a filter that keeps nothing of it", parts.text());
+    parts.filter = "kind = \"cic-decimator\"\norder = 2\nfactor = 4\n";
+    parts.stimulus = sine + "200\n";
+    parts.after = tone;
+    show_plan(page, "a tone that a decimator folds", parts.text());
     parts = {};
     parts.signal = "rate_hz = 1200.0\ninput = \"f32\"\noutput = \"f32\"\n";
     show_plan(page, "a limit in steps of a float format", parts.text());

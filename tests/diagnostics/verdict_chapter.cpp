@@ -1,6 +1,7 @@
 // Why a rule failed or is undecided, as the report says it, and what stands at the end of a run.
 #include <algorithm>
 #include <bit>
+#include <cmath>
 #include <limits>
 #include <string>
 #include <utility>
@@ -141,6 +142,63 @@ void show_rules(Page& page) {
          [](std::vector<Code> r) { return std::vector<Code>(r.size()); });
 }
 
+/// What a sine and a step come to.
+void show_figures(Page& page) {
+    const auto show = [&](std::string_view done, const Parts& parts, Spoil spoil) {
+        const Plan plan = plan_of(page, done, parts);
+        if (!plan.cases.empty()) page.show(done, judged(plan, spoil(right_response(plan))));
+    };
+    const std::string sine = "shape = \"sine\"\nfrequency_hz = 30.7\nlength_samples = 4096\nlevel_ratio = 0.9\n";
+    const auto tone = [&](const std::string& words) { return small("[[case.rule]]\nkind = \"tone\"\n" + words, sine); };
+    const Spoil bent = [](std::vector<Code> r) {
+        for (Code& code : r) code -= code / 256 * (code / 256) / 16;
+        return r;
+    };
+    const Spoil noisy = [](std::vector<Code> r) {
+        for (std::size_t n = 0; n < r.size(); ++n) r[n] += static_cast<Code>(n * n * 7919 % 601) - 300;
+        return r;
+    };
+    show("a sine that is bent", tone("min_sinad_db = 80\nmin_enob_bits = 12\nmax_thd_db = -80\nmin_sfdr_db = 80\n"),
+         bent);
+    show("a sine in noise, whose distortion cannot be seen", tone("max_thd_db = -80\nmin_sfdr_db = 80\n"), noisy);
+    show("a sine in noise, near its limit", tone("min_sinad_db = 42\n"), noisy);
+    show("no sine came back", tone("min_sinad_db = 80\n"),
+         [](std::vector<Code> r) { return std::vector<Code>(r.size()); });
+    show("a sine of another frequency, to be fitted", tone("min_sinad_db = 80\nfrequency = \"fitted\"\n"),
+         [](std::vector<Code> r) {
+             for (std::size_t n = 0; n < r.size(); ++n)
+                 r[n] = static_cast<Code>(std::lround(20000.0 * std::sin(0.16 * static_cast<double>(n))));
+             return r;
+         });
+
+    const std::string step = "shape = \"step\"\nat_samples = 64\nlength_samples = 400\n";
+    const auto transition = [&](const std::string& words) {
+        return small("[[case.rule]]\nkind = \"transition\"\n" + words, step);
+    };
+    const Spoil low = [](std::vector<Code> r) {
+        for (Code& code : r) code -= code / 4;
+        return r;
+    };
+    show("a step that ends too low", transition("final_lsb = 2\nmax_overshoot_percent = 1\n"), low);
+    show("a step that never gets to 90 %", transition("max_rise_samples = 4\n"), low);
+    show("a step near its limit", transition("max_rise_samples = 3.2\n"), [](std::vector<Code> r) { return r; });
+    show("a step that does not settle", transition("max_settling_samples = 50\n"), [](std::vector<Code> r) {
+        for (std::size_t n = 200; n < r.size(); ++n) r[n] += n % 2 == 0 ? 600 : -600;
+        return r;
+    });
+    show("a step that goes on moving", transition("final_lsb = 2\n"), [](std::vector<Code> r) {
+        for (std::size_t n = 200; n < r.size(); ++n) r[n] += static_cast<Code>(10 * (n - 200));
+        return r;
+    });
+    Parts floats = transition("max_rise_samples = 4\n");
+    floats.signal = "rate_hz = 1200.0\ninput = \"f32\"\noutput = \"f32\"\n";
+    floats.rule = "kind = \"error\"\nmax_ratio = 0.001\n";
+    show("a step that is not a number", floats, [](std::vector<Code> r) {
+        r[300] = std::bit_cast<Code>(std::numeric_limits<float>::quiet_NaN());
+        return r;
+    });
+}
+
 /// Rules that follow from the arithmetic.
 void show_arithmetic(Page& page) {
     const auto show = [&](std::string_view done, const std::string& filter, const std::string& rule, Spoil spoil) {
@@ -276,6 +334,7 @@ void show_summaries(Page& page) {
 void verdict_chapter(Page& page) {
     page.chapter("Rules that fail or are undecided");
     show_rules(page);
+    show_figures(page);
     show_arithmetic(page);
     show_the_rest(page);
     page.chapter("Responses that are to be unchanged");

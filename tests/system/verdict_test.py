@@ -74,6 +74,40 @@ class Verdicts(Case):
         self.assert_status(done, 1)
         self.assertEqual(self.verdicts(record)["response"], "fail")
 
+    def test_a_tone_rule_sees_a_repeated_half_buffer(self):
+        rule = '[[rule]]\nkind = "tone"\nmin_sinad_db = 85.0\nmin_enob_bits = 14.0\nmax_thd_db = -85.0\nmin_sfdr_db = 85.0\n'
+        sine = """[[case]]
+name = "belt frequency"
+[case.stimulus]
+shape = "sine"
+frequency_hz = 30.7
+level_ratio = 0.9
+length_samples = 4096
+"""
+        done, record = self.run_with(cases=sine, rules=rule)
+        self.assert_status(done, 0)
+        self.assertEqual(self.verdicts(record)["tone"], "pass")
+        self.cleanup_run()
+        done, record = self.run_with("--fault", "D01", cases=sine, rules=rule)
+        self.assert_status(done, 1)
+        self.assertEqual(self.verdicts(record)["tone"], "fail")
+        self.assertIn("sinad", done.out)
+
+    def test_a_transition_rule_sees_a_wider_window_and_a_wrong_gain(self):
+        rule = '[[rule]]\nkind = "transition"\nmax_rise_samples = 13.0\nmax_overshoot_percent = 0.1\nmax_settling_samples = 8.5\nfinal_lsb = 1.0\n'
+        step = STEP.replace("at_samples = 10", "at_samples = 64")
+        done, record = self.run_with(cases=step, rules=rule)
+        self.assert_status(done, 0)
+        self.assertEqual(self.verdicts(record)["transition"], "pass")
+        self.cleanup_run()
+        for fault, bad in (("S02", "rise"), ("C05", "final value off")):
+            with self.subTest(fault):
+                done, record = self.run_with("--fault", fault, cases=step, rules=rule)
+                self.assert_status(done, 1)
+                transition = next(rule for rule in record["verdict"]["cases"][0]["rules"] if rule["kind"] == "transition")
+                self.assertIn(bad, [figure["name"] for figure in transition["figures"] if figure["verdict"] == "fail"])
+                self.cleanup_run()
+
     def test_the_same_seed_gives_the_same_run_and_another_seed_another(self):
         import numpy as np
 

@@ -1,6 +1,7 @@
 #include "oracle/judge/certainty.hpp"
 
 #include <catch2/catch.hpp>
+#include <cmath>
 #include <limits>
 
 #include "oracle/judge/plan.hpp"
@@ -36,6 +37,23 @@ TEST_CASE("certainty: between surely beyond and surely within nothing is said", 
     // Few degrees of freedom: 3 have t = 10.2145 at 1e-3 (tables of Student's t, from memory).
     CHECK(at_most_one(1.0 - 1.021, 0.1, 3.0, shares).verdict == Verdict::undecided);
     CHECK(at_most_one(1.0 - 1.022, 0.1, 3.0, shares).verdict == Verdict::pass);
+}
+
+TEST_CASE("certainty: a bound stands beside the quantile and is not widened by it", "[judge]") {
+    const ErrorShares shares{1e-6, 1e-3};
+    const auto at = [&](double value, double uncertainty, double bound) {
+        return decided("figure", {value, uncertainty, bound}, infinite, {1.0, false, 0.0}, "%", shares);
+    };
+    for (const double u : {0.0, 0.1}) {
+        CHECK(at(1.0 + 0.5 + 4.752 * u - 1e-6, u, 0.5).verdict == Verdict::undecided);
+        CHECK(at(1.0 + 0.5 + 4.755 * u + 1e-6, u, 0.5).verdict == Verdict::fail);
+        CHECK(at(1.0 - 0.5 - 3.089 * u + 1e-6, u, 0.5).verdict == Verdict::undecided);
+        CHECK(at(1.0 - 0.5 - 3.091 * u - 1e-6, u, 0.5).verdict == Verdict::pass);
+    }
+    // Told as the standard uncertainty of a rectangular one.
+    CHECK(*at(0.0, 0.0, 0.5).uncertainty == judged(0.5 / std::sqrt(3.0)));
+    CHECK(*at(0.0, 0.3, 0.4 * std::sqrt(3.0)).uncertainty == Approx(0.5));
+    CHECK(at(0.0, 0.0, infinite).note == "how sure it is, is not known");
 }
 
 TEST_CASE("certainty: a figure without uncertainty is decided by its value alone", "[judge]") {

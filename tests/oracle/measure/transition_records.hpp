@@ -41,9 +41,10 @@ inline double value(const TransitionFigure& figure) {
     return figure.figure->value;
 }
 
+/// Of noise and codes together; in these records there is one or the other.
 inline double uncertainty(const TransitionFigure& figure) {
     REQUIRE(figure.figure);
-    return figure.figure->standard_uncertainty;
+    return figure.figure->standard_uncertainty + figure.figure->bound;
 }
 
 inline TransitionFault fault_of(const TransitionFigure& figure) {

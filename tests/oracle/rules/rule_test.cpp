@@ -89,3 +89,29 @@ TEST_CASE("rule: an unknown kind names those there are", "[judge]") {
     CHECK_THAT(text, Catch::Matchers::EndsWith(" or " + std::string(rule_recipes().back().name)));
     for (const Recipe& recipe : rule_recipes()) CHECK_THAT(text, Catch::Matchers::Contains(std::string(recipe.name)));
 }
+
+TEST_CASE("rule: a tone rule needs a limit, and knows its frequency unless it is asked to fit it", "[judge]") {
+    const auto made = make_rule("tone", values({{"min_sinad_db", 60.0}, {"frequency", std::string("fitted")}}), q15);
+    REQUIRE(made);
+    const auto& rule = std::get<ToneRule>(made->kind);
+    CHECK(*rule.min_sinad_db == 60.0);
+    CHECK(rule.highest_harmonic == 10);
+    CHECK(rule.fits_frequency);
+    CHECK_FALSE(std::get<ToneRule>(make_rule("tone", values({{"max_thd_db", -60.0}}), q15)->kind).fits_frequency);
+    CHECK(to_text(refused("tone", values({{"highest_harmonic", std::int64_t{5}}}))) ==
+          "kind: a rule of kind \"tone\" without a limit judges nothing\n  give at least one of min_sinad_db, "
+          "min_enob_bits, max_thd_db and min_sfdr_db");
+}
+
+TEST_CASE("rule: a transition rule needs a limit, and one direction", "[judge]") {
+    const auto made = make_rule("transition", values({{"max_fall_samples", 5.0}, {"final_unit", 2.0}}), q15);
+    REQUIRE(made);
+    const auto& rule = std::get<TransitionRule>(made->kind);
+    CHECK(*rule.max_fall_samples == 5.0);
+    CHECK(*rule.final_value == Limit{2.0, Limit::In::unit});
+    CHECK((rule.low_percent == 10.0 && rule.high_percent == 90.0 && rule.band_percent == 2.0));
+    CHECK(refused("transition", values({{"band_percent", 1.0}})).place == "kind");
+    CHECK(to_text(refused("transition", values({{"max_rise_samples", 5.0}, {"max_fall_samples", 5.0}}))) ==
+          "max_fall_samples: max_rise_samples is given too, and a step goes one way\n  keep the one that fits the "
+          "stimulus");
+}

@@ -45,6 +45,23 @@ void check_same(const Rule& a, const Rule& b) {
             CHECK(response->bands[i].min_db == other.bands[i].min_db);
             CHECK(response->bands[i].max_db == other.bands[i].max_db);
         }
+    } else if (const auto* tone = std::get_if<ToneRule>(&a.kind)) {
+        const auto& other = std::get<ToneRule>(b.kind);
+        CHECK((tone->min_sinad_db == other.min_sinad_db && tone->min_enob_bits == other.min_enob_bits &&
+               tone->max_thd_db == other.max_thd_db && tone->min_sfdr_db == other.min_sfdr_db));
+        CHECK(tone->highest_harmonic == other.highest_harmonic);
+        CHECK(tone->fits_frequency == other.fits_frequency);
+    } else if (const auto* transition = std::get_if<TransitionRule>(&a.kind)) {
+        const auto& other = std::get<TransitionRule>(b.kind);
+        CHECK((transition->max_rise_samples == other.max_rise_samples &&
+               transition->max_fall_samples == other.max_fall_samples));
+        CHECK((transition->max_overshoot_percent == other.max_overshoot_percent &&
+               transition->max_undershoot_percent == other.max_undershoot_percent &&
+               transition->max_preshoot_percent == other.max_preshoot_percent));
+        CHECK(transition->max_settling_samples == other.max_settling_samples);
+        CHECK(same(transition->final_value, other.final_value));
+        CHECK((transition->low_percent == other.low_percent && transition->high_percent == other.high_percent &&
+               transition->band_percent == other.band_percent));
     } else if (const auto* unchanged = std::get_if<UnchangedRule>(&a.kind)) {
         const auto& other = std::get<UnchangedRule>(b.kind);
         CHECK(unchanged->baseline == other.baseline);
