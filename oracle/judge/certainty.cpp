@@ -51,9 +51,9 @@ JudgedFigure decided(std::string name, const Figure& measured, double degrees, c
     figure.uncertainty = judged(u);
     // 0 times an infinite quantile: what has no spread is known, whatever the degrees.
     const auto reach = [&](double probability) { return u > 0.0 ? judged(u * quantile(probability, degrees)) : 0.0; };
-    if (*figure.margin + reach(shares.alpha) < 0.0) {
+    if (*figure.margin + reach(shares.alpha) + limit.bound < 0.0) {
         figure.verdict = Verdict::fail;
-    } else if (*figure.margin + limit.zone >= reach(shares.beta)) {
+    } else if (*figure.margin + limit.zone >= reach(shares.beta) + limit.bound) {
         figure.verdict = Verdict::pass;
     }
     return figure;

@@ -42,6 +42,9 @@ struct FigureLimit {
     /// Indifference: how far beyond the limit a true value may lie and still be told either way. 0: what lies near the
     /// limit stays undecided.
     double zone = 0.0;
+    /// How far the figure may lie off that is no noise, however sure it is: as much farther off is a fail, as much
+    /// nearer a pass.
+    double bound = 0.0;
 };
 
 /// Fails when the true value surely (alpha) lies beyond the limit; passes when it surely (beta) does not lie beyond the

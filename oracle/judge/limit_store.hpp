@@ -13,6 +13,7 @@
 #include <vector>
 
 #include "oracle/arithmetic/error_bound.hpp"
+#include "oracle/arithmetic/limit_cycle.hpp"
 #include "oracle/judge/leftover.hpp"
 #include "oracle/judge/plan.hpp"
 
@@ -25,6 +26,8 @@ public:
     std::optional<ErrorBound> judged_bound(const Plan& plan, const Case& the_case, int channel);
     /// What the arithmetic of a channel says; nullopt where it cannot be described.
     std::optional<DescribedChain> described(const Plan& plan, const Case& the_case, int channel);
+    /// What may remain in silence; nullopt where the arithmetic cannot be described.
+    std::optional<SilenceBound> silence_bound(const Plan& plan, const Case& the_case, int channel);
     BoundUse bound_use(const Plan& plan, const Case& the_case, int channel);
 
 private:
@@ -33,6 +36,7 @@ private:
         SampleFormat input, output;
         double output_per_input;
         std::optional<BoundDeriver> deriver;  ///< none: cannot be described
+        std::optional<SilenceBound> silence;  ///< once it was asked for; nothing was searched
         std::vector<std::pair<LeftoverUse, Leftover>> leftovers;
     };
     struct KnownRms {

@@ -23,7 +23,8 @@ struct RuleKind {
 constexpr RuleKind kinds[] = {
     {error_recipe, made<make_error_rule>},       {latency_recipe, made<make_latency_rule>},
     {response_recipe, made<make_response_rule>}, {unchanged_recipe, made<make_unchanged_rule>},
-    {exact_recipe, made<make_exact_rule>},
+    {exact_recipe, made<make_exact_rule>},       {silence_recipe, made<make_silence_rule>},
+    {noise_recipe, made<make_noise_rule>},       {drift_recipe, made<make_drift_rule>},
 };
 static_assert(std::size(kinds) == std::variant_size_v<decltype(Rule::kind)>);
 
