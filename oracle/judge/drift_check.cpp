@@ -20,10 +20,8 @@ void check(const DriftRule& rule, const Rule& asked, const Plan& plan, const Cas
         refusals.push_back({asked.position, "case \"" + the_case.name + "\"" + problem, remedy});
     };
     const auto at_least = [&](double needed) {
-        return "give it at least " +
-               brief(std::ceil(static_cast<double>(
-                   rates.sent_for(static_cast<std::int64_t>(std::min(std::ceil(needed), 0x1p52)) + unjudged)))) +
-               " samples";
+        const auto judged = static_cast<std::int64_t>(std::min(std::ceil(needed), 0x1p52));
+        return "give it at least " + std::to_string(rates.sent_for(judged + unjudged)) + " samples";
     };
     if (samples < drift_least_samples) {
         refuse(" is too short for a drift: " + std::to_string(samples) + " samples are judged, and " +

@@ -81,7 +81,7 @@ const std::vector<FaultEntry> entries = {
      pass_by<PassageFault::sample_dropped>},
     {"D04", "sample-duplicated", "", "each 1000th input sample is filtered twice", Shows::any_filter,
      pass_by<PassageFault::sample_duplicated>},
-    {"held-output", "", "", "the output is held while it moves by less than 4 codes", Shows::whole_numbers,
+    {"held-output", "", "", "the output is held while it moves by less than 4 codes a sample", Shows::whole_numbers,
      pass_by<PassageFault::output_held>},
     {"added-noise", "", "", "noise of -8 to 8 codes is added to the output", Shows::whole_numbers,
      pass_by<PassageFault::noise_added>},

@@ -150,17 +150,19 @@ private:
 
 class OutputHeld : public AtOutput {
 public:
-    OutputHeld(std::unique_ptr<CodeFilter> inner, Format format) : AtOutput(std::move(inner), format), held_(zero()) {}
+    OutputHeld(std::unique_ptr<CodeFilter> inner, Format format)
+        : AtOutput(std::move(inner), format), before_(zero()), held_(zero()) {}
 
 private:
-    void begin() override { held_ = zero(); }
+    void begin() override { before_ = held_ = zero(); }
     std::int64_t changed(std::int64_t y) override {
         constexpr std::int64_t dead_codes = 4;
-        if (y >= held_ + dead_codes || y <= held_ - dead_codes) held_ = y;
+        const std::int64_t moved = y - std::exchange(before_, y);
+        if (moved >= dead_codes || moved <= -dead_codes) held_ = y;
         return held_;
     }
 
-    std::int64_t held_;
+    std::int64_t before_, held_;
 };
 
 class NoiseAdded : public AtOutput {
