@@ -1,6 +1,7 @@
 #include "oracle/judge/derived_limits.hpp"
 
 #include <algorithm>
+#include <cmath>
 
 #include "oracle/judge/limit_store.hpp"
 #include "oracle/judge/units.hpp"
@@ -29,6 +30,19 @@ std::optional<DerivedLimits> derived_limits(const Plan& plan, const Case& the_ca
     return DerivedLimits{ends(bound->lower, bound->upper), size * bound->rms,
                          ends(bound->bias_lower, bound->bias_upper), size * bound->worst_rms,
                          ends(bound->clipped_bias_lower, bound->clipped_bias_upper)};
+}
+
+std::optional<ErrorEnds> derived_silence(const Plan& plan, const Case& the_case, int channel) {
+    const auto bound = plan.limits->silence_bound(plan, the_case, channel);
+    if (!bound) return std::nullopt;
+    const Signal& signal = plan.signal;
+    const double gain = signal.output_per_input, tail = finest_step(signal.output) / 2.0;
+    const double one = gain * bound->lower, other = gain * bound->upper;
+    ErrorEnds ends{std::min(one, other) - tail, std::max(one, other) + tail};
+    if (!signal.output.has_lsb()) return ends;
+    // Sums are run to 1e-12 of themselves: a code that lies on the bound counts. + 0.0: no end is -0.
+    const double lsb = lsb_value(signal.output), slack = 1.0 + 1e-9;
+    return ErrorEnds{std::ceil(ends.lowest / lsb * slack) * lsb + 0.0, std::floor(ends.highest / lsb * slack) * lsb};
 }
 
 bool is_derived(const ErrorRule& rule) {

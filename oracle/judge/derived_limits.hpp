@@ -33,6 +33,10 @@ std::optional<ErrorBound> judged_bound(const Plan& plan, const Case& the_case, i
 /// The same as limits.
 std::optional<DerivedLimits> derived_limits(const Plan& plan, const Case& the_case, int channel);
 
+/// What may remain at the output in silence, once no more than half a step is left of the design's tail; whole LSB
+/// where the output has them. nullopt where the arithmetic cannot be described.
+std::optional<ErrorEnds> derived_silence(const Plan& plan, const Case& the_case, int channel);
+
 /// Some limit of the rule is derived.
 bool is_derived(const ErrorRule& rule);
 /// Those that an error rule of the case asks for; zeros where none does.

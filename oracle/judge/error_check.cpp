@@ -1,41 +1,11 @@
 #include <algorithm>
 #include <cmath>
-#include <utility>
 
-#include "oracle/arithmetic/family.hpp"
+#include "oracle/judge/covered_arithmetic.hpp"
 #include "oracle/judge/error_judge.hpp"
-#include "oracle/judge/leftover.hpp"
 #include "oracle/judge/units.hpp"
 
 namespace halflsb {
-namespace {
-
-/// Why no bound covers this arithmetic. {problem, remedy}
-std::optional<std::pair<std::string, std::string>> not_covered(const Signal& signal, const DescribedChain& chain) {
-    int exponent = 0;
-    if (std::frexp(signal.output_per_input, &exponent) != 0.5) {
-        return std::pair("output_per_input is no power of two, and nothing says how it is rounded",
-                         "give the scale as a stage of its own, or a number for the limit");
-    }
-    for (std::size_t i = 0; i < chain.stages.size(); ++i) {
-        const DescribedStage& stage = chain.stages[i];
-        if (stage.number == NumberKind::float32 && family_of(stage.stage) == Family::cic) {
-            return std::pair("a cic in float32 has none: what its integrators lose no comb brings back",
-                             "give number = \"integer\" and words of whole numbers, or a number for the limit");
-        }
-        if (stage.stage.initial == Initial::zeros) continue;
-        // Whole numbers that start as if the first sample had gone on for ever err as if it had.
-        const bool is_finite = samples_to_forget(stage).has_value() && stage.number == NumberKind::integer;
-        if (stage.stage.initial == Initial::first_sample && is_finite) continue;
-        return std::pair(
-            "the state that initial puts into stage " + std::to_string(i + 1) + " is rounded in a way that nobody said",
-            "leave initial out, or give a number for the limit");
-    }
-    return std::nullopt;
-}
-
-}  // namespace
-
 void check(const ErrorRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
            std::vector<Refusal>& refusals) {
     if (!is_derived(rule)) return;
@@ -43,10 +13,8 @@ void check(const ErrorRule& rule, const Rule& asked, const Plan& plan, const Cas
     for (int channel = 1; channel <= plan.signal.channels; ++channel) {
         const auto chain = described_channel(plan, the_case, channel);
         if (!chain) return;  // the reader has refused it
-        if (const auto why = not_covered(plan.signal, *chain)) {
-            refusals.push_back({asked.position,
-                                "no limit follows from the arithmetic in case \"" + the_case.name + "\": " + why->first,
-                                why->second});
+        if (auto refusal = not_covered(asked, plan.signal, the_case, *chain)) {
+            refusals.push_back(std::move(*refusal));
             return;
         }
         const auto limits = derived_limits(plan, the_case, channel);
@@ -56,14 +24,7 @@ void check(const ErrorRule& rule, const Rule& asked, const Plan& plan, const Cas
         if (rule.rms && rule.rms->is_derived) wanted = std::max(wanted, limits->worst_rms);
         if (rule.bias && rule.bias->is_derived) wanted = std::max(wanted, limits->worst_bias.largest());
         if (wanted <= widest) continue;
-        const Limit::In in = natural_unit(plan.signal);
-        const std::string size = std::isfinite(wanted) ? "is " + brief(wanted / worth_of(in, plan.signal)) + " " +
-                                                             unit_name(in, plan.signal) + ", wider than full scale"
-                                                       : "has no end";
-        refusals.push_back({asked.position,
-                            "the limit that follows from the arithmetic in case \"" + the_case.name + "\" " + size,
-                            "say more of the arithmetic (halflsb predict shows what it comes from), give a number, or "
-                            "use kind = \"exact\""});
+        refusals.push_back(too_wide(asked, plan.signal, the_case, wanted));
         return;
     }
 }

@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cmath>
 
+#include "oracle/judge/error_figures.hpp"
 #include "oracle/judge/first_bad_watch.hpp"
 #include "oracle/judge/units.hpp"
 #include "oracle/measure/error.hpp"
@@ -10,43 +11,9 @@
 namespace halflsb {
 namespace {
 
-/// Figures are held against their limits after rounding, so that limit, margin and verdict agree.
-JudgedFigure at_most(std::string name, double value, double limit, std::string unit) {
-    JudgedFigure figure{std::move(name), judged(value), judged(limit), std::nullopt,
-                        std::move(unit), false,         Verdict::fail, {}};
-    figure.verdict = pass_or_fail(*figure.value <= *figure.limit);
-    figure.margin = judged(*figure.limit - *figure.value);
-    return figure;
-}
-
-/// Errors against what each sign may come to: told is the one with the least room, and its end as the limit.
-JudgedFigure within(std::string name, const ErrorEnds& found, const ErrorEnds& limits, std::string unit) {
-    // + 0.0: no figure is -0.
-    const double lowest = judged(found.lowest) + 0.0, highest = judged(found.highest) + 0.0;
-    const double lower = judged(limits.lowest) + 0.0, upper = judged(limits.highest) + 0.0;
-    const bool is_low = lowest - lower < upper - highest;
-    JudgedFigure figure{std::move(name),        is_low ? lowest : highest,
-                        is_low ? lower : upper, std::nullopt,
-                        std::move(unit),        is_low,
-                        Verdict::fail,          {}};
-    figure.verdict = pass_or_fail(lowest >= lower && highest <= upper);
-    figure.margin = judged(is_low ? lowest - lower : upper - highest);
-    figure.note = "derived, " + brief(lower) + " .. " + brief(upper);
-    return figure;
-}
-
 bool is_wider_once_clipped(const DerivedLimits& derived) {
     return derived.worst_rms != derived.rms || derived.worst_bias.lowest != derived.bias.lowest ||
            derived.worst_bias.highest != derived.bias.highest;
-}
-
-/// Where derived limits say nothing, and which word stands in their way.
-std::string exempt_text(std::int64_t exempt, const RailWatch* rails) {
-    const auto from = rails == nullptr ? std::nullopt : rails->first_unsafe_index();
-    if (!from) return "derived limits say nothing of " + std::to_string(exempt) + " samples";
-    return "from sample " + std::to_string(*from) + " on " + rails->unsafe_node() +
-           " may leave its word: derived limits say nothing of " + std::to_string(exempt) +
-           (exempt == 1 ? " sample" : " samples") + ", only exact does";
 }
 
 std::optional<ErrorEnds> largest_ends(const ErrorRule& rule, const JudgedChannel& channel) {

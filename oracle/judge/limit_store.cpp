@@ -51,8 +51,8 @@ LimitStore::KnownChain& LimitStore::known_chain(FilterChain chain, const Signal&
     }
     if (chains_.size() >= most_chains) chains_.erase(chains_.begin());
     auto described = describe(chain, signal.input, signal.output, signal.output_per_input).described;
-    auto known = std::make_unique<KnownChain>(
-        KnownChain{std::move(chain), signal.input, signal.output, signal.output_per_input, std::nullopt, {}});
+    auto known = std::make_unique<KnownChain>(KnownChain{
+        std::move(chain), signal.input, signal.output, signal.output_per_input, std::nullopt, std::nullopt, {}});
     if (described) known->deriver.emplace(std::move(*described));
     chains_.push_back(std::move(known));
     return *chains_.back();
@@ -101,6 +101,13 @@ std::optional<DescribedChain> LimitStore::described(const Plan& plan, const Case
     const KnownChain& known = known_chain(chain_of(plan, the_case, channel), plan.signal);
     if (!known.deriver) return std::nullopt;
     return known.deriver->chain();
+}
+
+std::optional<SilenceBound> LimitStore::silence_bound(const Plan& plan, const Case& the_case, int channel) {
+    KnownChain& known = known_chain(chain_of(plan, the_case, channel), plan.signal);
+    if (!known.deriver) return std::nullopt;
+    if (!known.silence) known.silence = halflsb::silence_bound(known.deriver->chain(), 0);
+    return known.silence;
 }
 
 std::optional<ErrorBound> LimitStore::judged_bound(const Plan& plan, const Case& the_case, int channel) {

@@ -13,6 +13,7 @@
 #include <vector>
 
 #include "oracle/arithmetic/error_bound.hpp"
+#include "oracle/arithmetic/limit_cycle.hpp"
 #include "oracle/judge/leftover.hpp"
 #include "oracle/judge/plan.hpp"
 
@@ -28,6 +29,8 @@ public:
     /// settling.hpp says of what, and what is left of it: half_step over full_scale.
     std::optional<std::int64_t> settling_samples(const Plan& plan, const Case& the_case, int channel, double full_scale,
                                                  double half_step);
+    /// What may remain in silence; nullopt where the arithmetic cannot be described.
+    std::optional<SilenceBound> silence_bound(const Plan& plan, const Case& the_case, int channel);
     BoundUse bound_use(const Plan& plan, const Case& the_case, int channel);
 
 private:
@@ -36,6 +39,7 @@ private:
         SampleFormat input, output;
         double output_per_input;
         std::optional<BoundDeriver> deriver;  ///< none: cannot be described
+        std::optional<SilenceBound> silence;  ///< once it was asked for; nothing was searched
         std::vector<std::pair<LeftoverUse, Leftover>> leftovers;
         struct Settling {
             double ratio;  ///< half_step over full_scale

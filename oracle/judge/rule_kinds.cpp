@@ -3,10 +3,13 @@
 #include <algorithm>
 
 #include "oracle/judge/case_rates.hpp"
+#include "oracle/judge/drift_judge.hpp"
 #include "oracle/judge/error_judge.hpp"
 #include "oracle/judge/exact_judge.hpp"
 #include "oracle/judge/latency_check.hpp"
+#include "oracle/judge/noise_judge.hpp"
 #include "oracle/judge/response_judge.hpp"
+#include "oracle/judge/silence_judge.hpp"
 #include "oracle/judge/tone_judge.hpp"
 #include "oracle/judge/transition_judge.hpp"
 #include "oracle/judge/unchanged_judge.hpp"

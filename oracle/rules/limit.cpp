@@ -50,7 +50,7 @@ Outcome<std::optional<Limit>> read_limit(const ParameterValues& values, const Re
         const double widest = in == Limit::In::lsb                ? context.output_full_scale_lsb
                               : in == Limit::In::full_scale_ratio ? 1.0
                                                                   : std::fabs(*context.full_scale_unit);
-        if (!(*number <= widest)) {
+        if (!words.is_rate && !(*number <= widest)) {
             return refused_word(std::string(name),
                                 number_text(*number) + " is wider than full scale (" + number_text(widest) + ")",
                                 "a limit that wide judges nothing; give the error that the design allows");

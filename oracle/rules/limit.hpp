@@ -22,6 +22,7 @@ struct Limit {
 /// The words of one limit, a word a unit: max_lsb, max_ratio, max_unit.
 struct LimitWords {
     std::string_view lsb, ratio, unit;
+    bool is_rate = false;  ///< of a change in time, to which full scale sets no end
 };
 inline constexpr LimitWords largest_words{"max_lsb", "max_ratio", "max_unit"};
 

@@ -21,9 +21,15 @@ struct RuleKind {
 
 /// In the order of the variant.
 constexpr RuleKind kinds[] = {
-    {error_recipe, made<make_error_rule>},           {latency_recipe, made<make_latency_rule>},
-    {response_recipe, made<make_response_rule>},     {tone_recipe, made<make_tone_rule>},
-    {transition_recipe, made<make_transition_rule>}, {unchanged_recipe, made<make_unchanged_rule>},
+    {error_recipe, made<make_error_rule>},
+    {latency_recipe, made<make_latency_rule>},
+    {response_recipe, made<make_response_rule>},
+    {tone_recipe, made<make_tone_rule>},
+    {transition_recipe, made<make_transition_rule>},
+    {noise_recipe, made<make_noise_rule>},
+    {silence_recipe, made<make_silence_rule>},
+    {drift_recipe, made<make_drift_rule>},
+    {unchanged_recipe, made<make_unchanged_rule>},
     {exact_recipe, made<make_exact_rule>},
 };
 static_assert(std::size(kinds) == std::variant_size_v<decltype(Rule::kind)>);

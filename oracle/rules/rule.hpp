@@ -9,12 +9,15 @@
 #include <variant>
 #include <vector>
 
+#include "oracle/rules/drift_rule.hpp"
 #include "oracle/rules/error_rule.hpp"
 #include "oracle/rules/exact_rule.hpp"
 #include "oracle/rules/latency_rule.hpp"
+#include "oracle/rules/noise_rule.hpp"
 #include "oracle/rules/plan_position.hpp"
 #include "oracle/rules/response_rule.hpp"
 #include "oracle/rules/rule_words.hpp"
+#include "oracle/rules/silence_rule.hpp"
 #include "oracle/rules/tone_rule.hpp"
 #include "oracle/rules/transition_rule.hpp"
 #include "oracle/rules/unchanged_rule.hpp"
@@ -22,7 +25,9 @@
 namespace halflsb {
 
 struct Rule {
-    std::variant<ErrorRule, LatencyRule, ResponseRule, ToneRule, TransitionRule, UnchangedRule, ExactRule> kind;
+    std::variant<ErrorRule, LatencyRule, ResponseRule, ToneRule, TransitionRule, NoiseRule, SilenceRule, DriftRule,
+                 UnchangedRule, ExactRule>
+        kind;
     PlanPosition position;
 };
 

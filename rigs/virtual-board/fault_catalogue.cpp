@@ -81,6 +81,12 @@ const std::vector<FaultEntry> entries = {
      pass_by<PassageFault::sample_dropped>},
     {"D04", "sample-duplicated", "", "each 1000th input sample is filtered twice", Shows::any_filter,
      pass_by<PassageFault::sample_duplicated>},
+    {"held-output", "", "", "the output is held while it moves by less than 4 codes a sample", Shows::whole_numbers,
+     pass_by<PassageFault::output_held>},
+    {"added-noise", "", "", "noise of -8 to 8 codes is added to the output", Shows::whole_numbers,
+     pass_by<PassageFault::noise_added>},
+    {"drift", "", "", "the output rises by a code each 1000 samples", Shows::whole_numbers,
+     pass_by<PassageFault::output_drifts>},
     {"flip-byte", "", "N", "each Nth byte toward the host has a bit flipped", Shows::line,
      [](F faults, N n, Ms) { faults.line.flip_every = n; }},
     {"drop-byte", "", "N", "each Nth byte toward the host is lost", Shows::line,
@@ -170,6 +176,8 @@ bool shows_in(Shows shows, const FilterParts& filter) {
     switch (shows) {
         case Shows::steady_rate:
             return kind != FilterKind::rate;
+        case Shows::whole_numbers:
+            return kind != FilterKind::rate && !is_float(filter.format);
         case Shows::fixed_average:
             return kind == FilterKind::average;
         // 30 bits are dropped from a q31 section: no stimulus of ours meets a tie there.

@@ -35,6 +35,7 @@ struct Faults {
 enum class Shows {
     any_filter,
     steady_rate,
+    whole_numbers,
     line,
     fixed_average,
     tie,

@@ -1,5 +1,6 @@
 #include "rigs/virtual-board/passage_faults.hpp"
 
+#include <algorithm>
 #include <array>
 #include <functional>
 #include <utility>
@@ -119,6 +120,77 @@ private:
     std::int32_t held_ = 0;  // set by the samples before the first event
 };
 
+/// Changes an output that is a whole number, within the ends of its word.
+class AtOutput : public Around {
+public:
+    AtOutput(std::unique_ptr<CodeFilter> inner, Format format)
+        : Around(std::move(inner)),
+          zero_(zero_code(format)),
+          half_range_(std::int64_t{1} << (value_bits(format) - 1)),
+          is_whole_(!is_float(format)) {}
+    void reset() override {
+        Around::reset();
+        begin();
+    }
+    std::int32_t step(std::int32_t x) override {
+        const std::int32_t y = Around::step(x);
+        if (!is_whole_) return y;
+        return static_cast<std::int32_t>(std::clamp(changed(y), zero_ - half_range_, zero_ + half_range_ - 1));
+    }
+
+protected:
+    virtual std::int64_t changed(std::int64_t y) = 0;
+    virtual void begin() = 0;
+    std::int64_t zero() const { return zero_; }
+
+private:
+    std::int64_t zero_, half_range_;
+    bool is_whole_;
+};
+
+class OutputHeld : public AtOutput {
+public:
+    OutputHeld(std::unique_ptr<CodeFilter> inner, Format format)
+        : AtOutput(std::move(inner), format), before_(zero()), held_(zero()) {}
+
+private:
+    void begin() override { before_ = held_ = zero(); }
+    std::int64_t changed(std::int64_t y) override {
+        constexpr std::int64_t dead_codes = 4;
+        const std::int64_t moved = y - std::exchange(before_, y);
+        if (moved >= dead_codes || moved <= -dead_codes) held_ = y;
+        return held_;
+    }
+
+    std::int64_t before_, held_;
+};
+
+class NoiseAdded : public AtOutput {
+public:
+    using AtOutput::AtOutput;
+
+private:
+    void begin() override { state_ = 1; }
+    std::int64_t changed(std::int64_t y) override {
+        // Constants of Numerical Recipes' quick generator (from memory); its upper bits alone are random.
+        state_ = state_ * 1664525U + 1013904223U;
+        return y + static_cast<std::int64_t>((state_ >> 16) % 17U) - 8;
+    }
+
+    std::uint32_t state_ = 1;
+};
+
+class OutputDrifts : public AtOutput {
+public:
+    using AtOutput::AtOutput;
+
+private:
+    void begin() override { count_ = 0; }
+    std::int64_t changed(std::int64_t y) override { return y + count_++ / event_period_samples; }
+
+    std::int64_t count_ = 0;
+};
+
 }  // namespace
 
 std::unique_ptr<CodeFilter> with_fault(PassageFault fault, Format format, std::unique_ptr<CodeFilter> filter) {
@@ -146,6 +218,12 @@ std::unique_ptr<CodeFilter> with_fault(PassageFault fault, Format format, std::u
             return std::make_unique<EveryThousandth>(std::move(filter), true);
         case PassageFault::sample_duplicated:
             return std::make_unique<EveryThousandth>(std::move(filter), false);
+        case PassageFault::output_held:
+            return std::make_unique<OutputHeld>(std::move(filter), format);
+        case PassageFault::noise_added:
+            return std::make_unique<NoiseAdded>(std::move(filter), format);
+        case PassageFault::output_drifts:
+            return std::make_unique<OutputDrifts>(std::move(filter), format);
     }
     return filter;
 }

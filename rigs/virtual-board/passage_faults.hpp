@@ -19,9 +19,12 @@ enum class PassageFault {
     half_buffer_repeated,    ///< D01: each tenth half-buffer of 32 samples is its predecessor
     sample_dropped,          ///< D03: each 1000th never reaches the filter, the output is held
     sample_duplicated,       ///< D04: each 1000th passes the filter twice
+    output_held,             ///< while it moves by less than 4 codes a sample
+    noise_added,             ///< at the output, uniform over -8 .. 8 codes
+    output_drifts,           ///< by a code each 1000 samples
 };
 
-/// `format` decides what zero is, and what a swapped or an inverted sample.
+/// `format` decides what zero is, where the codes end, and what a swapped or an inverted sample.
 std::unique_ptr<CodeFilter> with_fault(PassageFault fault, Format format, std::unique_ptr<CodeFilter> filter);
 
 }  // namespace halflsb::board

@@ -85,6 +85,26 @@ const std::vector<Body> bodies = {
      "[[case.rule]]\nkind = \"transition\"\nmax_overshoot_percent = 0.001\n"},
     {"an error without a limit", noise, "[[case.rule]]\nkind = \"error\"\n"},
     {"a limit twice", noise, "[[case.rule]]\nkind = \"error\"\nmax_lsb = 1\nmax_ratio = 0.1\n"},
+    {"a silence rule without a limit", noise, "[[case.rule]]\nkind = \"silence\"\n"},
+    {"silence of a stimulus that never ends", noise, "[[case.rule]]\nkind = \"silence\"\nmax_lsb = 1\n"},
+    {"too little silence", "shape = \"impulse\"\nlength_samples = 100\nat_samples = 60\n",
+     "[[case.rule]]\nkind = \"silence\"\nmax_lsb = 1\n"},
+    {"a noise rule without a limit", noise, "[[case.rule]]\nkind = \"noise\"\n"},
+    {"a noise gain twice", noise, "[[case.rule]]\nkind = \"noise\"\nmax_gain_db = -6\nmax_gain = 0.25\n"},
+    {"noise gains that cross", noise, "[[case.rule]]\nkind = \"noise\"\nmin_gain_db = -5\nmax_gain_db = -6\n"},
+    {"a noise gain of a step", "shape = \"step\"\nlength_samples = 4096\n",
+     "[[case.rule]]\nkind = \"noise\"\nmax_gain_db = -6\n"},
+    {"a noise gain of noise with a step added",
+     "shape = \"noise\"\nlength_samples = 4096\nadd = [{ shape = \"step\", level_ratio = 0.1 }]\n",
+     "[[case.rule]]\nkind = \"noise\"\nmax_gain_db = -6\n"},
+    {"a noise gain of a short noise", "shape = \"noise\"\nlength_samples = 300\n",
+     "[[case.rule]]\nkind = \"noise\"\nmax_gain_db = -6\n"},
+    {"a drift rule without a limit", noise, "[[case.rule]]\nkind = \"drift\"\n"},
+    {"a slope that rounding may feign", noise, "[[case.rule]]\nkind = \"drift\"\nmax_slope_lsb_per_hour = 60\n"},
+    {"no slope at all", noise, "[[case.rule]]\nkind = \"drift\"\nmax_slope_lsb_per_hour = 0\n"},
+    {"a change that rounding may feign", noise, "[[case.rule]]\nkind = \"drift\"\nmax_change_lsb = 1\n"},
+    {"a drift of a short case", "shape = \"noise\"\nlength_samples = 200\n",
+     "[[case.rule]]\nkind = \"drift\"\nmax_change_lsb = 2\n"},
     {"a limit in a unit that is nowhere explained", noise, "[[case.rule]]\nkind = \"error\"\nmax_unit = 1\n"},
 };
 
@@ -161,6 +181,14 @@ void rule_chapter(Page& page) {
     parts.signal = Parts{}.signal;
     parts.filter = "kind = \"one-pole\"\nshift_bits = 3\ninitial = \"first-sample\"\n";
     show_plan(page, "a derived limit of a preloaded recursion", parts.text());
+    parts = {};
+    parts.filter = "kind = \"biquad-cascade\"\nsections = [[1.0, 0.0, 0.0, -1.9999999, 0.9999999]]\n";
+    parts.stimulus = "shape = \"impulse\"\nlength_samples = 4096\n";
+    parts.rule = "kind = \"silence\"\nmax_lsb = 1\n";
+    show_plan(page, "silence of a filter whose tail has no end", parts.text());
+    parts.stimulus = Parts{}.stimulus;
+    parts.rule = "kind = \"noise\"\nmax_gain_db = 1\n";
+    show_plan(page, "a noise gain of a filter that never settles", parts.text());
     parts = {};
     parts.of_case = "start = \"running\"\ndiscard_samples = 64\n";
     parts.after = "[[case.rule]]\nkind = \"unchanged\"\n";

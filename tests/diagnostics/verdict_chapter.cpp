@@ -199,6 +199,65 @@ void show_figures(Page& page) {
     });
 }
 
+/// What remains, what is noise, and what drifts.
+void show_quiet_rules(Page& page) {
+    const auto show = [&](std::string_view done, const std::string& rule, const std::string& stimulus, auto spoil) {
+        Parts parts = small("[[case.rule]]\n" + rule, stimulus);
+        parts.rule = "kind = \"error\"\nmax_lsb = 30000\n";
+        const Plan plan = plan_of(page, done, parts);
+        if (!plan.cases.empty()) page.show(done, judged(plan, spoil(right_response(plan))));
+    };
+    const auto each = [](std::vector<Code> r, auto change) {
+        for (std::size_t n = 0; n < r.size(); ++n) r[n] += change(n);
+        return r;
+    };
+    const std::string impulse = "shape = \"impulse\"\nlength_samples = 200\nat_samples = 20\n";
+    const std::string silence = "kind = \"silence\"\nmax_lsb = 0\n";
+    show("silence, and nothing remains", silence, impulse, [](std::vector<Code> r) { return r; });
+    show("silence, and a value that is stuck", silence, impulse,
+         [&](std::vector<Code> r) { return each(r, [](std::size_t n) { return n > 22 ? 3 : 0; }); });
+    show("silence, and a limit cycle", silence, impulse, [&](std::vector<Code> r) {
+        return each(r, [](std::size_t n) { return n > 22 ? static_cast<Code>(n % 7) - 3 : 0; });
+    });
+    show("silence, and noise", silence, impulse, [&](std::vector<Code> r) {
+        return each(r, [](std::size_t n) { return n > 22 ? static_cast<Code>(n * 7919 % 20011 % 5) - 2 : 0; });
+    });
+    show("silence that comes late", silence, impulse,
+         [&](std::vector<Code> r) { return each(r, [](std::size_t n) { return n > 22 && n < 60 ? 1 : 0; }); });
+    const std::string noise = "shape = \"noise\"\nlength_samples = 8192\n";
+    const std::string gains = "kind = \"noise\"\nmin_gain_db = -6.1\nmax_gain = 0.251\nmax_excess_lsb = 0.3\n";
+    show("noise that comes through too weak", gains, noise, [](std::vector<Code> r) {
+        for (Code& code : r) code /= 2;
+        return r;
+    });
+    show("noise that does not come through", gains, noise,
+         [](std::vector<Code> r) { return std::vector<Code>(r.size()); });
+    show("noise of a board near its limit", "kind = \"noise\"\nmax_excess_lsb = 4.92\ndelta_db = 0.001\n", noise,
+         [&](std::vector<Code> r) {
+             return each(r, [](std::size_t n) { return static_cast<Code>(n * 7919 % 20011 % 17) - 8; });
+         });
+    const std::string slope = "kind = \"drift\"\nmax_slope_lsb_per_hour = 4000\nmax_change_lsb = 5\n";
+    show("a drift", slope, noise,
+         [&](std::vector<Code> r) { return each(r, [](std::size_t n) { return -static_cast<Code>(n / 400); }); });
+    show("a drift near its limit", slope, noise,
+         [&](std::vector<Code> r) { return each(r, [](std::size_t n) { return static_cast<Code>(n / 1100); }); });
+    const auto of_floats = [&](std::string_view done, const std::string& rule, const std::string& stimulus,
+                               std::size_t nan_at) {
+        Parts parts = small("[[case.rule]]\n" + rule, stimulus);
+        parts.signal = "rate_hz = 1200.0\ninput = \"f32\"\noutput = \"f32\"\n";
+        parts.rule = "kind = \"latency\"\nlatency_samples = 0\n";
+        const Plan plan = plan_of(page, done, parts);
+        if (plan.cases.empty()) return;
+        auto response = right_response(plan);
+        response[nan_at] = std::bit_cast<Code>(std::numeric_limits<float>::quiet_NaN());
+        page.show(done, judged(plan, response));
+    };
+    of_floats("noise that is not a number", "kind = \"noise\"\nmax_gain_db = 0\n", noise, 500);
+    of_floats("a drift that is not a number", "kind = \"drift\"\nmax_change_ratio = 0.1\n", noise, 500);
+    of_floats("silence that is not a number", "kind = \"silence\"\nmax_ratio = 0.1\n",
+              "shape = \"impulse\"\nlength_samples = 200\nat_samples = 20\nlevel_ratio = 0.9\n", 100);
+}
+
 /// Rules that follow from the arithmetic.
 void show_arithmetic(Page& page) {
     const auto show = [&](std::string_view done, const std::string& filter, const std::string& rule, Spoil spoil) {
@@ -335,6 +394,7 @@ void verdict_chapter(Page& page) {
     page.chapter("Rules that fail or are undecided");
     show_rules(page);
     show_figures(page);
+    show_quiet_rules(page);
     show_arithmetic(page);
     show_the_rest(page);
     page.chapter("Responses that are to be unchanged");

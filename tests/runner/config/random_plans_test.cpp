@@ -66,6 +66,17 @@ void check_same(const Rule& a, const Rule& b) {
         const auto& other = std::get<UnchangedRule>(b.kind);
         CHECK(unchanged->baseline == other.baseline);
         CHECK(same(unchanged->largest, other.largest));
+    } else if (const auto* silence = std::get_if<SilenceRule>(&a.kind)) {
+        CHECK(same(silence->largest, std::get<SilenceRule>(b.kind).largest));
+    } else if (const auto* noise = std::get_if<NoiseRule>(&a.kind)) {
+        const auto& other = std::get<NoiseRule>(b.kind);
+        CHECK((noise->least_gain == other.least_gain && noise->largest_gain == other.largest_gain));
+        CHECK(same(noise->excess, other.excess));
+        CHECK(noise->relative_to_design == other.relative_to_design);
+        CHECK(noise->delta_db == other.delta_db);
+    } else if (const auto* drift = std::get_if<DriftRule>(&a.kind)) {
+        const auto& other = std::get<DriftRule>(b.kind);
+        CHECK((same(drift->slope, other.slope) && same(drift->change, other.change)));
     }
 }
 
