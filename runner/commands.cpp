@@ -59,21 +59,40 @@ std::variant<PlanAndRigs, ReadProblems> read_plan_and_rigs(const Options& option
     return made;
 }
 
-Outcome<void> check_log_path(const Options& options, const Files& files) {
-    if (!options.log_file) return {};
-    const std::string log = files.resolved(*options.log_file);
+namespace {
+
+/// Refuses to replace what the command reads by what it writes.
+Outcome<void> check_replaced(const char* option, const std::string& what, const std::string& file,
+                             const Options& options, const Files& files) {
+    const std::string written = files.resolved(file);
     std::vector<std::string> inputs = options.rigs;
     inputs.insert(inputs.end(), {options.plan, options.image.value_or("")});
     for (const std::string& input : inputs) {
-        if (log.empty() || input.empty() || files.resolved(input) != log) continue;
-        return Error{ErrorKind::usage, "--log", "it would replace " + printable(input),
-                     "give the log a name of its own"};
+        if (written.empty() || input.empty() || files.resolved(input) != written) continue;
+        return Error{ErrorKind::usage, option, "it would replace " + printable(input),
+                     "give " + what + " a name of its own"};
     }
     const std::string run = options.run.empty() ? "" : files.resolved(options.run);
-    if (!log.empty() && !run.empty() && log.compare(0, run.size() + 1, run + "/") == 0)
-        return Error{ErrorKind::usage, "--log", "it would replace a file of the run " + printable(options.run),
-                     "give the log a name outside of that folder"};
+    if (!written.empty() && !run.empty() && written.compare(0, run.size() + 1, run + "/") == 0) {
+        return Error{ErrorKind::usage, option, "it would replace a file of the run " + printable(options.run),
+                     "give " + what + " a name outside of that folder"};
+    }
     return {};
+}
+
+}  // namespace
+
+Outcome<void> check_written_paths(const Options& options, const Files& files) {
+    if (options.log_file) {
+        if (auto harmless = check_replaced("--log", "the log", *options.log_file, options, files); !harmless)
+            return harmless;
+    }
+    if (!options.html_file) return {};
+    const std::string page = files.resolved(*options.html_file);
+    if (!page.empty() && page == files.resolved(options.run + "/report.html")) return {};
+    if (!page.empty() && options.log_file && page == files.resolved(*options.log_file))
+        return Error{ErrorKind::usage, "--html", "it would replace the log", "give the page a name of its own"};
+    return check_replaced("--html", "the page", *options.html_file, options, files);
 }
 
 int ports_command(const Options& options, const Desk& desk) {

@@ -34,8 +34,9 @@ int accept_command(const Options& options, const Desk& desk);
 int predict_command(const Options& options, const Desk& desk);
 int ports_command(const Options& options, const Desk& desk);
 
-/// Refuses a --log that would replace a plan, a rig, the image or a file of a run's folder.
-Outcome<void> check_log_path(const Options& options, const Files& files);
+/// Refuses a --log or a --html that would replace a plan, a rig, the image or a file of a run's folder; its report.html
+/// may be replaced by --html.
+Outcome<void> check_written_paths(const Options& options, const Files& files);
 
 /// The style of a stream: colour, width and signs that it takes.
 TextStyle style_of(const Terminal& terminal, Stream stream, ColourWish wish);

@@ -1,4 +1,5 @@
-// judge: saved captures again, by the plan they were made for or by another. Nothing is written, no board is touched.
+// judge: saved captures again, by the plan they were made for or by another. Nothing but the page of --html is written,
+// no board is touched.
 #include <variant>
 
 #include "runner/choose_cases.hpp"
@@ -7,6 +8,7 @@
 #include "runner/config/plan_file.hpp"
 #include "runner/judge_run.hpp"
 #include "runner/open_run.hpp"
+#include "runner/report/html_report.hpp"
 #include "runner/report/terminal_report.hpp"
 #include "runner/world/interrupt.hpp"
 #include "runner/world/sha256.hpp"
@@ -59,6 +61,8 @@ Outcome<Question> read_question(const RecordedRun& record, const Options& option
     return question;
 }
 
+std::string text_of(const Plan& plan) { return plan.parts.empty() ? "" : plan.parts.front().bytes; }
+
 }  // namespace
 
 int judge_command(const Options& options, const Desk& desk) {
@@ -82,10 +86,13 @@ int judge_command(const Options& options, const Desk& desk) {
     const TextStyle style = style_of(desk.terminal, Stream::out, options.colour);
     const std::string version = std::string("halflsb ") + tool_version + "\n";
     auto written = say(desk, version + judged_text(run, run.tool_version, !another_plan, style));
+    HtmlReport page(text_of(question->plan), tool_version);
     for (const Judgement::Match& match : judgement->matches) {
-        auto result = judge_capture(*record, question->plan, match, desk.files);
+        CasePlots plots;
+        auto result = judge_capture(*record, question->plan, match, desk.files, options.html_file ? &plots : nullptr);
         if (!result) return tell(result.error(), options, desk);
         run.cases.push_back(std::move(*result));
+        page.add_case(run, plots);
         if (written) written = say(desk, case_text(run, run.cases.size() - 1, style));
     }
     if (written) written = say(desk, summary_text(run, style));
@@ -93,6 +100,10 @@ int judge_command(const Options& options, const Desk& desk) {
         auto document = judged_run_json(*record, run, another_plan);
         if (!document) return tell(document.error(), options, desk);
         desk.answer->add_run(std::move(*document));
+    }
+    if (options.html_file) {
+        if (auto saved = desk.files.write(*options.html_file, page.document(run)); !saved)
+            return tell(saved.error(), options, desk);
     }
     const int status = exit_status_of_judgement(run);
     if (!written) return tell(written.error(), options, desk);

@@ -174,7 +174,7 @@ Outcome<Judgement> match_captures(const RecordedRun& record, const Plan& plan, b
 }
 
 Outcome<CaseResult> judge_capture(const RecordedRun& record, const Plan& plan, const Judgement::Match& match,
-                                  const Files& files) {
+                                  const Files& files, CasePlots* plots) {
     const Case& the_case = plan.cases[match.case_index];
     CaseResult result = *match.recorded;
     result.number = match.case_index + 1;
@@ -194,7 +194,7 @@ Outcome<CaseResult> judge_capture(const RecordedRun& record, const Plan& plan, c
                          (as_sent ? ", its stimulus had " : ", the plan's filter returns ") + count_text(length),
                      "the record was edited; capture anew with halflsb check"};
     }
-    CaseJudge judge(plan, the_case);
+    CaseJudge judge(plan, the_case, plots != nullptr);
     std::vector<Code> codes;
     for (std::int64_t first = 0; first < length; first += block_samples) {
         if (interrupted()) return interrupted_error("case \"" + result.name + "\"");
@@ -216,6 +216,7 @@ Outcome<CaseResult> judge_capture(const RecordedRun& record, const Plan& plan, c
     if (!judged) return judged.error();
     result.rules = std::move(judged->rules);
     result.latency_told = judged->latency_told;
+    if (plots != nullptr) *plots = std::move(judged->plots);
     result.verdict = verdict_of(result.rules);
     return result;
 }

@@ -7,6 +7,7 @@
 #include <vector>
 
 #include "oracle/judge/plan.hpp"
+#include "oracle/judge/plots.hpp"
 #include "runner/record/recorded_run.hpp"
 #include "runner/world/files.hpp"
 #include "runner/world/result.hpp"
@@ -34,8 +35,9 @@ Outcome<Judgement> match_captures(const RecordedRun& record, const Plan& plan, b
                                   const std::vector<std::size_t>& selected);
 
 /// One case, from its capture in blocks. An invalid one stays invalid with its reason. An interruption is an error.
+/// `plots` receives what a person wants to see of it.
 Outcome<CaseResult> judge_capture(const RecordedRun& record, const Plan& plan, const Judgement::Match& match,
-                                  const Files& files);
+                                  const Files& files, CasePlots* plots = nullptr);
 
 /// Cases that the recorded run meant to capture; an error when the plan does not have one of them.
 Outcome<std::vector<std::size_t>> recorded_cases(const RecordedRun& record, const Plan& plan);

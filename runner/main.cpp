@@ -17,7 +17,8 @@ namespace {
 
 int run(const Options& options, const Desk& desk) {
     if (auto watching = watch_for_interrupts(); !watching) return tell(watching.error(), options, desk);
-    if (auto harmless = check_log_path(options, desk.files); !harmless) return tell(harmless.error(), options, desk);
+    if (auto harmless = check_written_paths(options, desk.files); !harmless)
+        return tell(harmless.error(), options, desk);
     const auto diagnostics = Diagnostics::start(desk.terminal, options.verbose, options.log_file);
     if (!diagnostics) return tell(diagnostics.error(), options, desk);
     switch (options.command) {

@@ -76,11 +76,13 @@ Outcome<Attempt> run_attempt(const RunDesk& desk, std::size_t index, std::size_t
     if (!sent) return sent.error();
     Recorder* const keeps_sent = *sent ? &**sent : nullptr;
 
+    CasePlots plots;
     // A recorder that is not finished leaves nothing behind.
-    auto result = run_case({desk.plan, the_case, index + 1, place, desk.board.filter_number, *desk.board.wire,
-                            desk.board.link->baud(), desk.settings, *recorder, keeps_sent, desk.clock, desk.observer});
+    auto result =
+        run_case({desk.plan, the_case, index + 1, place, desk.board.filter_number, *desk.board.wire,
+                  desk.board.link->baud(), desk.settings, *recorder, keeps_sent, desk.clock, desk.observer, &plots});
     if (!result) return result.error();
-    Attempt made{{std::move(*result), std::nullopt}};
+    Attempt made{{std::move(*result), std::nullopt, std::move(plots)}};
     if (auto decided = decide_on_another(desk, attempt, made); !decided) return decided.error();
 
     CaseResult& facts = made.recorded.result;

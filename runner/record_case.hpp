@@ -3,6 +3,7 @@
 
 #include <optional>
 
+#include "oracle/judge/plots.hpp"
 #include "runner/board.hpp"
 #include "runner/board_settings.hpp"
 #include "runner/record/run_folder.hpp"
@@ -30,6 +31,7 @@ struct RecordedCase {
     CaseResult result;
     /// The board did not answer any more when the case was to run again; then `result` is the attempt before.
     std::optional<Error> board_gone;
+    CasePlots plots = {};  ///< of what was judged
 };
 
 /// Streams, records and judges the plan's case `index` (from 0), `place` among the selected ones (from 1). A case

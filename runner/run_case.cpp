@@ -171,7 +171,7 @@ std::int64_t sent_samples(const Case& the_case) {
 Outcome<CaseResult> run_case(const CaseStage& stage) {
     const Instant started = stage.clock.now();
     CaseResult result = facts_of(stage);
-    CaseJudge judge(stage.plan, stage.the_case);
+    CaseJudge judge(stage.plan, stage.the_case, stage.plots != nullptr);
 
     const Outcome<void> streamed = stream(stage, judge, result);
     if (result.stream.samples_sent > 0) take_figures(stage, result.stream);
@@ -185,6 +185,7 @@ Outcome<CaseResult> run_case(const CaseStage& stage) {
         if (!judgement) return judgement.error();
         result.rules = std::move(judgement->rules);
         result.latency_told = judgement->latency_told;
+        if (stage.plots != nullptr) *stage.plots = std::move(judgement->plots);
         result.verdict = verdict_of(result.rules);
         // The board's own counters are news, not evidence: a board that cannot tell them is not blamed.
         if (auto counters = stage.wire.counters()) {

@@ -4,6 +4,7 @@
 #include <string>
 
 #include "oracle/judge/plan.hpp"
+#include "oracle/judge/plots.hpp"
 #include "runner/board_settings.hpp"
 #include "runner/capture/recorder.hpp"
 #include "runner/run_observer.hpp"
@@ -26,6 +27,7 @@ struct CaseStage {
     Recorder* sent;  ///< keeps the stimulus; nullptr where its recipe is enough
     const Clock& clock;
     RunObserver& observer;
+    CasePlots* plots = nullptr;  ///< receives what a person wants to see of it; nullptr: nothing is wanted
 };
 
 /// Zeros of a flush and the stimulus: the instants that travel.

@@ -6,6 +6,7 @@
 
 #include "oracle/judge/rule_kinds.hpp"
 #include "runner/record_case.hpp"
+#include "runner/report/html_report.hpp"
 #include "runner/report/junit_report.hpp"
 #include "runner/run_case.hpp"
 #include "runner/shell_words.hpp"
@@ -80,7 +81,8 @@ void say_start_states(const RunRequest& request) {
 }
 
 /// The loop over the cases; what ended it early.
-Outcome<void> stream_cases(const RunRequest& request, const RunDesk& desk, RunResult& run, RunFolder& folder) {
+Outcome<void> stream_cases(const RunRequest& request, const RunDesk& desk, RunResult& run, RunFolder& folder,
+                           HtmlReport& page) {
     bool board_lost = false;
     for (std::size_t place = 1; place <= request.selected.size(); ++place) {
         if (board_lost) {
@@ -93,6 +95,7 @@ Outcome<void> stream_cases(const RunRequest& request, const RunDesk& desk, RunRe
         result.rerun = rerun_command(request, result.name);
         board_lost = !desk.board.wire->is_streaming(desk.board.filter_number);
         run.cases.push_back(std::move(result));
+        page.add_case(run, recorded->plots);
         if (auto saved = folder.save(run, false, junit_report(run)); !saved) return saved;
         desk.observer.finished(run);
         if (recorded->board_gone && place < request.selected.size()) return *recorded->board_gone;
@@ -120,24 +123,24 @@ void put_settings_back(const RunDesk& desk, bool ended_early, RunResult& run) {
 }
 
 /// Everything between the open folder and the last case; what ended it early.
-Outcome<void> run_on_rig(const RunRequest& request, RunResult& run, RunFolder& folder, Files& files, const Clock& clock,
-                         RunObserver& observer) {
+Outcome<void> run_on_rig(const RunRequest& request, RunResult& run, RunFolder& folder, HtmlReport& page, Files& files,
+                         const Clock& clock, RunObserver& observer) {
     auto board = open_board(request.rig, request.plan, request.image, clock, run.firmware);
     if (!board) return board.error();
-    return run_cases(request, *board, run, folder, files, clock, observer);
+    return run_cases(request, *board, run, folder, page, files, clock, observer);
 }
 
 }  // namespace
 
-Outcome<void> run_cases(const RunRequest& request, Board& board, RunResult& run, RunFolder& folder, Files& files,
-                        const Clock& clock, RunObserver& observer) {
+Outcome<void> run_cases(const RunRequest& request, Board& board, RunResult& run, RunFolder& folder, HtmlReport& page,
+                        Files& files, const Clock& clock, RunObserver& observer) {
     run.board = facts_of(board, request.rig);
     auto settings = BoardSettings::agreed(board.greeting, request.plan, request.selected, board.link->name());
     if (!settings) return settings.error();
     say_start_states(request);
     observer.greeted(run, wire_seconds_of(request, board, run.board.block_samples));
     const RunDesk desk{request.plan, request.rig, run, folder, board, *settings, files, clock, observer};
-    const Outcome<void> ran = stream_cases(request, desk, run, folder);
+    const Outcome<void> ran = stream_cases(request, desk, run, folder, page);
     put_settings_back(desk, !ran, run);
     return ran;
 }
@@ -151,15 +154,18 @@ RunResult run_plan(const RunRequest& request, Files& files, const Clock& clock, 
         return run;
     }
     run.folder = folder->path();
+    HtmlReport page(request.plan_text);
     observer.starting(run);
     for (const std::string& warning : run.warnings) observer.warning(warning);
     if (auto saved = folder->save_inputs(run); !saved) run.ended_by = saved.error();
     // From now on a program that dies leaves a record that says so.
     if (auto saved = folder->save(run, false, junit_report(run)); !saved && !run.ended_by) run.ended_by = saved.error();
     if (!run.ended_by) {
-        if (auto ran = run_on_rig(request, run, *folder, files, clock, observer); !ran) run.ended_by = ran.error();
+        if (auto ran = run_on_rig(request, run, *folder, page, files, clock, observer); !ran)
+            run.ended_by = ran.error();
     }
     run.elapsed_s = to_seconds(clock.now() - started);
+    if (auto saved = folder->save_page(page.document(run)); !saved && !run.ended_by) run.ended_by = saved.error();
     if (auto saved = folder->save(run, true, junit_report(run)); !saved) {
         spdlog::error("{}", to_text(saved.error()));
         if (!run.ended_by || run.ended_by->kind != ErrorKind::interrupted) run.ended_by = saved.error();

@@ -10,6 +10,7 @@
 #include "runner/board.hpp"
 #include "runner/config/rig.hpp"
 #include "runner/record/run_folder.hpp"
+#include "runner/report/html_report.hpp"
 #include "runner/run_observer.hpp"
 #include "runner/world/clock.hpp"
 #include "runner/world/files.hpp"
@@ -39,8 +40,8 @@ RunResult run_plan(const RunRequest& request, Files& files, const Clock& clock, 
 
 /// The part of it on a board that greeted and agrees with the plan's signal: settings are checked before the first
 /// sample, each case streamed, judged and recorded, and settings that cases changed put back at the end, whatever
-/// ended it. The Error is what ended it before its last case.
-Outcome<void> run_cases(const RunRequest& request, Board& board, RunResult& run, RunFolder& folder, Files& files,
-                        const Clock& clock, RunObserver& observer);
+/// ended it; what the page shows of a case is added to it. The Error is what ended it before its last case.
+Outcome<void> run_cases(const RunRequest& request, Board& board, RunResult& run, RunFolder& folder, HtmlReport& page,
+                        Files& files, const Clock& clock, RunObserver& observer);
 
 }  // namespace halflsb

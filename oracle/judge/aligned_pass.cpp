@@ -18,6 +18,7 @@ AlignedPass::AlignedPass(const JudgedChannel& channel, int lag_samples)
     for (const Rule& rule : channel.the_case.rules) {
         if (auto judge = make_judge(rule, at_lag)) judges_.push_back({&rule, std::move(judge)});
     }
+    if (channel.wants_plots) trace_.emplace(channel.plan, channel.the_case, channel.channel, lag_samples);
     if (lag_samples > 0) {
         waiting_.append_silence(static_cast<std::size_t>(lag_samples), signal_,
                                 wanted_references(channel.the_case, channel.channel));
@@ -59,7 +60,17 @@ void AlignedPass::measure(const ReferenceBlock& reference, std::span<const Code>
     values_of(signal_.output, response, response_values_);
     const AlignedBlock block{next_index_, reference, response, response_values_};
     for (const Judged& judged : judges_) judged.judge->add(block);
+    if (trace_) trace_->add(block);
     next_index_ += static_cast<std::int64_t>(response.size());
+}
+
+void AlignedPass::plot(CasePlots& plots) const {
+    if (!trace_) return;
+    // Each judge finds the plots of its own channel alone.
+    CasePlots of_channel;
+    trace_->plot(of_channel);
+    for (const Judged& judged : judges_) judged.judge->plot(of_channel);
+    for (Plot& plot : of_channel) plots.push_back(std::move(plot));
 }
 
 std::optional<RuleVerdict> AlignedPass::verdict(const Rule& rule, const RailWatch* rails) const {

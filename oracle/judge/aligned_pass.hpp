@@ -14,6 +14,7 @@
 #include <vector>
 
 #include "oracle/judge/rule_judge.hpp"
+#include "oracle/judge/time_trace.hpp"
 #include "oracle/judge/waiting_reference.hpp"
 
 namespace halflsb {
@@ -31,6 +32,8 @@ public:
     /// On a rule of the case; none where it says nothing of this channel or is judged elsewhere (rule_kinds.hpp).
     /// `rails` are those of the reference that was added; derived limits need them.
     std::optional<RuleVerdict> verdict(const Rule& rule, const RailWatch* rails) const;
+    /// Appends the plots of the samples and of the rules, where they are wanted.
+    void plot(CasePlots& plots) const;
     /// There are rules of the kind, and each passes.
     template <class Kind>
     bool passes(const RailWatch* rails) const {
@@ -56,6 +59,7 @@ private:
     std::int64_t first_judged_;
     std::int64_t next_index_ = 0;  ///< of the next response sample that meets its partner
     std::vector<Judged> judges_;
+    std::optional<TimeTrace> trace_;
     // What waits for its partner.
     std::size_t to_skip_;
     WaitingReference waiting_;

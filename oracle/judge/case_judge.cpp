@@ -20,7 +20,7 @@ bool is_implicit_latency(const Rule& rule) {
 
 }  // namespace
 
-CaseJudge::CaseJudge(const Plan& plan, const Case& the_case)
+CaseJudge::CaseJudge(const Plan& plan, const Case& the_case, bool wants_plots)
     : plan_(plan),
       case_(the_case),
       rates_(plan, the_case),
@@ -29,7 +29,10 @@ CaseJudge::CaseJudge(const Plan& plan, const Case& the_case)
     if (!plan.filter_is_unknown) {
         channels_.reserve(static_cast<std::size_t>(plan.signal.channels));
         for (int channel = 1; channel <= plan.signal.channels; ++channel)
-            channels_.emplace_back(plan, the_case, channel);
+            channels_.emplace_back(plan, the_case, channel, wants_plots);
+    } else if (wants_plots) {
+        for (int channel = 1; channel <= plan.signal.channels; ++channel)
+            traces_.emplace_back(plan, the_case, channel, 0);
     }
     for (const Rule& rule : the_case.rules) {
         if (std::holds_alternative<UnchangedRule>(rule.kind)) unchanged_.emplace_back(plan, the_case, rule);
@@ -66,9 +69,25 @@ void CaseJudge::add_cycles(std::span<const Code> response) {
                       one_channel(part, plan_.signal.channels, judge.channel(), one_));
         }
         for (UnchangedJudge& judge : unchanged_) judge.add(sent_.of_all(), part);
+        trace_unknown(part);
         sent_samples_ += sent;
         samples_ += returned;
         response = response.subspan(part.size());
+    }
+}
+
+void CaseJudge::trace_unknown(std::span<const Code> response) {
+    for (std::size_t i = 0; i < traces_.size(); ++i) {
+        const int channel = static_cast<int>(i) + 1;
+        const auto sent = sent_.of_channel(channel);
+        const auto returned = one_channel(response, plan_.signal.channels, channel, one_);
+        std::vector<double> stimulus(sent.size()), values(returned.size());
+        values_of(plan_.signal.input, sent, stimulus);
+        for (double& value : stimulus) value *= plan_.signal.output_per_input;
+        values_of(plan_.signal.output, returned, values);
+        AlignedBlock block{samples_, {}, returned, values};
+        block.reference.stimulus = stimulus;
+        traces_[i].add(block);
     }
 }
 
@@ -119,6 +138,8 @@ Outcome<CaseJudgement> CaseJudge::finish(const ResponseReplay& replay) {
             }
         }
     }
+    for (const ChannelJudge& judge : channels_) judge.plot(judgement.plots);
+    for (const TimeTrace& trace : traces_) trace.plot(judgement.plots);
     return judgement;
 }
 

@@ -10,7 +10,9 @@
 #include "oracle/judge/channel_judge.hpp"
 #include "oracle/judge/latency_evidence.hpp"
 #include "oracle/judge/plan.hpp"
+#include "oracle/judge/plots.hpp"
 #include "oracle/judge/sent_block.hpp"
+#include "oracle/judge/time_trace.hpp"
 #include "oracle/judge/unchanged_judge.hpp"
 #include "oracle/judge/verdict.hpp"
 
@@ -25,12 +27,13 @@ struct CaseJudgement {
     /// where a channel could not tell.
     std::vector<RuleVerdict> rules;
     bool latency_told = false;  ///< by some channel
+    CasePlots plots;            ///< channel by channel; none where the judge was not to make any
 };
 
 class CaseJudge {
 public:
-    /// The plan and the case must outlive the judge.
-    CaseJudge(const Plan& plan, const Case& the_case);
+    /// The plan and the case must outlive the judge. Plots change no verdict.
+    CaseJudge(const Plan& plan, const Case& the_case, bool wants_plots = false);
     /// The next response samples, in order from instant 0: whole instants, a code a channel, adjacent. Where the rate
     /// changes, those of a rate cycle that is not whole yet wait for the rest of it.
     void add(std::span<const Code> response);
@@ -42,6 +45,7 @@ public:
 
 private:
     void add_cycles(std::span<const Code> response);
+    void trace_unknown(std::span<const Code> response);
     Outcome<void> go_through_again(const ResponseReplay& replay);
 
     const Plan& plan_;
@@ -51,6 +55,7 @@ private:
     SentBlock sent_;
     std::vector<ChannelJudge> channels_;  ///< none when the filter is unknown: there is no reference
     std::vector<UnchangedJudge> unchanged_;
+    std::vector<TimeTrace> traces_;                ///< of each channel when the filter is unknown and plots are wanted
     std::int64_t sent_samples_ = 0, samples_ = 0;  ///< instants; of the response those that were looked at
     std::vector<Code> waiting_;                    ///< of the response, the rest
     std::vector<Code> one_;

@@ -29,8 +29,8 @@ std::string samples_text(int count) {
 
 }  // namespace
 
-ChannelJudge::ChannelJudge(const Plan& plan, const Case& the_case, int channel)
-    : judged_{plan, the_case, channel, asked_limits(plan, the_case, channel)},
+ChannelJudge::ChannelJudge(const Plan& plan, const Case& the_case, int channel, bool wants_plots)
+    : judged_{plan, the_case, channel, asked_limits(plan, the_case, channel), 0, wants_plots},
       latency_rule_(find_latency_rule(the_case)),
       expected_lag_(expected_lag_of(the_case)),
       wanted_(wanted_references(the_case, channel)),
@@ -131,6 +131,10 @@ std::optional<RuleVerdict> ChannelJudge::latency_verdict(const Rule& rule) const
     }
     verdict.figures.push_back(std::move(figure));
     return verdict;
+}
+
+void ChannelJudge::plot(CasePlots& plots) const {
+    (latency_found() == Latency::other ? second_->pass : pass_).plot(plots);
 }
 
 std::optional<RuleVerdict> ChannelJudge::verdict(const Rule& rule) const {

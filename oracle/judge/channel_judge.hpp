@@ -21,7 +21,7 @@ namespace halflsb {
 class ChannelJudge {
 public:
     /// The plan and the case must outlive the judge; channels count from 1. The filter must be known.
-    ChannelJudge(const Plan& plan, const Case& the_case, int channel);
+    ChannelJudge(const Plan& plan, const Case& the_case, int channel, bool wants_plots = false);
 
     int channel() const { return judged_.channel; }
     /// The channel's next codes, in whole rate cycles (case_rates.hpp), from index 0 on.
@@ -40,6 +40,8 @@ public:
     bool latency_told() const;
     /// On a rule of the case, after all samples; none where the rule says nothing of this channel.
     std::optional<RuleVerdict> verdict(const Rule& rule) const;
+    /// Appends the plots of the channel, at the lag that its rules were judged at; none where they are not wanted.
+    void plot(CasePlots& plots) const;
 
 private:
     struct SecondPass {

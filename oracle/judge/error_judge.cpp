@@ -35,6 +35,7 @@ public:
 
     void add(const AlignedBlock& block) override;
     RuleVerdict verdict(const RailWatch* rails) const override;
+    void plot(CasePlots& plots) const override;
 
 private:
     void add_stretch(const AlignedBlock& block, std::size_t from, std::size_t to);
@@ -167,6 +168,23 @@ RuleVerdict ErrorJudge::verdict(const RailWatch* rails) const {
     // The measure compares unrounded, the verdict rounded figures: a pass shows no bad sample.
     if (verdict.verdict == Verdict::pass) verdict.first_bad.reset();
     return verdict;
+}
+
+/// The limits of the largest error, in every plot of errors.
+void ErrorJudge::plot(CasePlots& plots) const {
+    if (!rule_.largest) return;
+    const Signal& signal = channel_.plan.signal;
+    const double largest = rule_.largest->is_derived ? 0.0 : value_of(*rule_.largest, signal);
+    const ErrorEnds ends = rule_.largest->is_derived ? channel_.derived.error : ErrorEnds{-largest, largest};
+    const double worth = worth_of(natural_unit(signal), signal);
+    for (Plot& plot : plots) {
+        for (PlotPanel& panel : plot.panels) {
+            if (panel.quantity != error_panel) continue;
+            const ErrorFigures found = measure_.value();
+            panel.limits.push_back(
+                {-HUGE_VAL, HUGE_VAL, ends.lowest / worth, ends.highest / worth, pass_or_fail(found.beyond == 0)});
+        }
+    }
 }
 
 }  // namespace

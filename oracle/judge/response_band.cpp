@@ -47,6 +47,12 @@ BandDecision::Gain BandDecision::gain_at(const ResponseSums& sums, const BandPoi
     return {point.design, surest_estimate(sums, point.index), relative_to_design_ ? std::abs(point.design) : 1.0};
 }
 
+std::vector<BandDecision::Gain> BandDecision::gains(const ResponseSums& sums) const {
+    std::vector<Gain> gains;
+    for (const BandPoint& point : points_) gains.push_back(gain_at(sums, point));
+    return gains;
+}
+
 void BandDecision::look(const ResponseSums& sums, const ErrorShares& shares) {
     for (std::size_t i = 0; i < points_.size(); ++i) {
         const auto is_open = [i](const Side& side) { return side.verdicts[i] == Verdict::undecided; };
@@ -79,13 +85,16 @@ Verdict BandDecision::verdict() const {
     return worst;
 }
 
-JudgedFigure BandDecision::figure_of(const Side& side, const std::vector<Gain>& gains) const {
-    const double limit = judged(side.limit_db);
+double BandDecision::room_of(const Side& side, const Gain& gain) {
+    const double value = judged(gain.value_db()), limit = judged(side.limit_db);
+    return side.at_least ? value - limit : limit - value;
+}
+
+std::size_t BandDecision::decisive(const Side& side, const std::vector<Gain>& gains) const {
     std::size_t shown = 0;
     double shown_room = 0.0;
     for (std::size_t i = 0; i < points_.size(); ++i) {
-        const double value = judged(gains[i].value_db());
-        const double room = side.at_least ? value - limit : limit - value;
+        const double room = room_of(side, gains[i]);
         // A NaN has no room at all, and must not hide behind a comparison that is false.
         const bool tighter = !(room >= shown_room) && !std::isnan(shown_room);
         const Verdict verdict = side.verdicts[i], before = side.verdicts[shown];
@@ -93,6 +102,12 @@ JudgedFigure BandDecision::figure_of(const Side& side, const std::vector<Gain>& 
         shown = i;
         shown_room = room;
     }
+    return shown;
+}
+
+JudgedFigure BandDecision::figure_of(const Side& side, const std::vector<Gain>& gains) const {
+    const std::size_t shown = decisive(side, gains);
+    const double limit = judged(side.limit_db);
     JudgedFigure figure;
     figure.name = std::string(side.at_least ? "lowest" : "highest") + " gain from " + hz_text(band_.from_hz) + " to " +
                   hz_text(band_.to_hz);
@@ -104,7 +119,7 @@ JudgedFigure BandDecision::figure_of(const Side& side, const std::vector<Gain>& 
     const double value = judged(gains[shown].value_db());
     if (std::isfinite(value)) {
         figure.value = value;
-        figure.margin = judged(shown_room);
+        figure.margin = judged(room_of(side, gains[shown]));
         const double uncertainty = judged(gains[shown].uncertainty_db());
         if (std::isfinite(uncertainty)) figure.uncertainty = uncertainty;
         if (figure.verdict == Verdict::pass && *figure.margin < 0.0) figure.note += ", in the zone";
@@ -115,11 +130,20 @@ JudgedFigure BandDecision::figure_of(const Side& side, const std::vector<Gain>& 
 }
 
 std::vector<JudgedFigure> BandDecision::figures(const ResponseSums& sums) const {
-    std::vector<Gain> gains;
-    for (const BandPoint& point : points_) gains.push_back(gain_at(sums, point));
+    const std::vector<Gain> measured = gains(sums);
     std::vector<JudgedFigure> figures;
-    for (const Side& side : sides_) figures.push_back(figure_of(side, gains));
+    for (const Side& side : sides_) figures.push_back(figure_of(side, measured));
     return figures;
+}
+
+std::vector<std::pair<double, Verdict>> BandDecision::decisive_points(const ResponseSums& sums) const {
+    const std::vector<Gain> measured = gains(sums);
+    std::vector<std::pair<double, Verdict>> points;
+    for (const Side& side : sides_) {
+        const std::size_t shown = decisive(side, measured);
+        points.emplace_back(points_[shown].hz, side.verdicts[shown]);
+    }
+    return points;
 }
 
 double BandDecision::samples_to_tell(const Side& side, const Gain& gain, double samples,

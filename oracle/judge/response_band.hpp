@@ -6,6 +6,7 @@
 
 #include <complex>
 #include <cstddef>
+#include <utility>
 #include <vector>
 
 #include "oracle/judge/certainty.hpp"
@@ -34,6 +35,9 @@ public:
     /// For each side the point that decides it: of the points that fail, or else of those that are undecided, or else
     /// of all, the one with the least room.
     std::vector<JudgedFigure> figures(const ResponseSums& sums) const;
+    /// Of the same points frequency and verdict.
+    std::vector<std::pair<double, Verdict>> decisive_points(const ResponseSums& sums) const;
+    const ResponseBand& band() const { return band_; }
     /// What is undecided yet.
     struct Open {
         std::size_t gains = 0;  ///< points and sides
@@ -54,6 +58,10 @@ private:
     struct Gain;
     Gain gain_at(const ResponseSums& sums, const BandPoint& point) const;
     double samples_to_tell(const Side& side, const Gain& gain, double samples, const ErrorShares& shares) const;
+    std::vector<Gain> gains(const ResponseSums& sums) const;
+    static double room_of(const Side& side, const Gain& gain);
+    /// Index of the point that decides the side.
+    std::size_t decisive(const Side& side, const std::vector<Gain>& gains) const;
     JudgedFigure figure_of(const Side& side, const std::vector<Gain>& gains) const;
 
     ResponseBand band_;

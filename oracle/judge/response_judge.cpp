@@ -7,6 +7,7 @@
 #include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/clip_watch.hpp"
 #include "oracle/judge/response_band.hpp"
+#include "oracle/judge/response_plot.hpp"
 #include "oracle/judge/rule_kinds.hpp"
 #include "oracle/judge/units.hpp"
 #include "oracle/measure/repeated_looks.hpp"
@@ -115,7 +116,10 @@ RepeatedLooks looks_at(const ResponseMeasure& measure, const JudgedChannel& chan
 class ResponseJudge final : public RuleJudge {
 public:
     ResponseJudge(const ResponseRule& rule, const Rule& asked, const JudgedChannel& channel)
-        : asked_(asked),
+        : rule_(rule),
+          asked_(asked),
+          confidence_(channel.plan.certainty.confidence),
+          shown_channel_(channel.plan.signal.channels == 1 ? 0 : channel.channel),
           measure_(make_response_measure(channel.plan, channel.the_case, channel.lag_samples)),
           clips_(channel.plan.signal.output),
           looks_(looks_at(*measure_, channel)) {
@@ -131,6 +135,7 @@ public:
             decisions += bands_.back().decisions();
         }
         shares_of_point_ = shares_of_rule(channel.plan).alpha_over(std::max<std::size_t>(decisions, 1));
+        if (channel.wants_plots) plotted_ = points_in({0.0, HUGE_VAL, {}, {}}, measure_->sums(), channel);
     }
 
     void add(const AlignedBlock& block) override {
@@ -162,6 +167,12 @@ public:
 
     RuleVerdict verdict(const RailWatch* rails) const override;
 
+    void plot(CasePlots& plots) const override {
+        if (plotted_.empty()) return;
+        plots.push_back(response_plot(rule_, plotted_, bands_, measure_->sums(), confidence_));
+        plots.back().channel = shown_channel_;
+    }
+
 private:
     void look() {
         for (BandDecision& band : bands_)
@@ -175,7 +186,10 @@ private:
     }
     std::string why_undecided() const;
 
+    const ResponseRule& rule_;
     const Rule& asked_;
+    double confidence_;
+    int shown_channel_;
     std::unique_ptr<ResponseMeasure> measure_;
     ClipWatch clips_;
     RepeatedLooks looks_;
@@ -186,6 +200,7 @@ private:
     std::vector<BandDecision> bands_;
     std::vector<std::string> without_points_;
     std::vector<double> error_;
+    std::vector<BandPoint> plotted_;  ///< all that the stimulus answers for; empty where no plot is wanted
 };
 
 RuleVerdict ResponseJudge::verdict(const RailWatch*) const {

@@ -11,6 +11,7 @@
 
 #include "oracle/judge/derived_limits.hpp"
 #include "oracle/judge/plan.hpp"
+#include "oracle/judge/plots.hpp"
 #include "oracle/judge/reference_source.hpp"
 #include "oracle/judge/verdict.hpp"
 
@@ -35,6 +36,9 @@ public:
     virtual void finish() {}
     /// On all that was added. `rails` are those of the reference; nullptr when nobody asked for them.
     virtual RuleVerdict verdict(const RailWatch* rails) const = 0;
+    /// Appends what a person would want to see of it, or adds its limits to what is there: the plots of samples over
+    /// time come first. Only where the channel wants plots, and after finish().
+    virtual void plot(CasePlots&) const {}
 };
 
 /// What a judge is made from; all of it outlives the judge.
@@ -44,6 +48,7 @@ struct JudgedChannel {
     int channel;            ///< counted from 1
     DerivedLimits derived;  ///< asked_limits() of the channel
     int lag_samples = 0;    ///< of the pass that adds to it
+    bool wants_plots = false;
 
     bool is_driven() const { return halflsb::is_driven(the_case, channel); }
 };

@@ -112,6 +112,7 @@ std::string take_colour(Options& options, const std::string& argument) {
 
 std::string take_image(Options& options, const std::string& argument) { return take_path(options.image, argument); }
 std::string take_out(Options& options, const std::string& argument) { return take_path(options.out, argument); }
+std::string take_html(Options& options, const std::string& argument) { return take_path(options.html_file, argument); }
 std::string take_root(Options& options, const std::string& argument) { return take_path(options.root, argument); }
 std::string take_log(Options& options, const std::string& argument) { return take_path(options.log_file, argument); }
 
@@ -128,8 +129,8 @@ const std::vector<CommandSpec>& command_table() {
          "Streams the plan's stimuli to the board, captures what its filter returns and judges it; the main job",
          "halflsb check cw7.toml --rig bench.toml"},
         {Command::judge, "judge", "RUN", "PLAN",
-         "Judges the captures of a run again, by the plan it was made with or by another; needs no board and writes "
-         "nothing",
+         "Judges the captures of a run again, by the plan it was made with or by another; needs no board and, but "
+         "for --html, writes nothing",
          "halflsb judge .halflsb/20261201T093000Z-cw7"},
         {Command::accept, "accept", "RUN", "",
          "Keeps the responses of a good run as the baseline that its plan's unchanged rules compare with",
@@ -250,6 +251,16 @@ const std::vector<OptionSpec>& option_table() {
          "",
          {},
          take_out},
+        {"--html",
+         "",
+         "FILE",
+         "none",
+         "Writes report.html anew, of the cases that are judged, replacing the file",
+         {judge},
+         {},
+         "",
+         {},
+         take_html},
         {"--root",
          "",
          "DIR",

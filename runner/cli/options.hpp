@@ -43,7 +43,8 @@ struct Options {
     std::optional<std::uint64_t> seed;
     std::optional<std::string> image;
     std::optional<std::string> out;
-    std::optional<std::string> root;  ///< none: the plan's folder
+    std::optional<std::string> html_file;  ///< of judge: where the page goes
+    std::optional<std::string> root;       ///< none: the plan's folder
     bool verbose = false;
     std::optional<std::string> log_file;
     ColourWish colour = ColourWish::automatic;

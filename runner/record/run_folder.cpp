@@ -102,6 +102,10 @@ Outcome<void> RunFolder::save(const RunResult& run, bool finished, const std::st
     return files_->write(path_of("junit.xml"), junit_xml);
 }
 
+Outcome<void> RunFolder::save_page(const std::string& report_html) {
+    return files_->write(path_of("report.html"), report_html);
+}
+
 Outcome<RunFolder> open_run_folder(Files& files, const RunFolderWish& wish) {
     auto path = wish.out ? claim_given(files, *wish.out) : claim_default(files, wish);
     if (!path) return path.error();

@@ -35,6 +35,8 @@ public:
     Outcome<void> save_inputs(const RunResult& run);
     /// run.json and junit.xml anew: after each case, and once more with `finished` at the end.
     Outcome<void> save(const RunResult& run, bool finished, const std::string& junit_xml);
+    /// report.html, once at the end: its plots would have to be written anew after each case.
+    Outcome<void> save_page(const std::string& report_html);
 
 private:
     friend Outcome<RunFolder> open_run_folder(Files& files, const RunFolderWish& wish);

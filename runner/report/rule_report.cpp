@@ -47,12 +47,12 @@ std::string measured_text(const JudgedFigure& figure, const std::string& uncerta
     return figure.note.empty() ? "not measured" : "see below";
 }
 
-std::string measured_cell(const JudgedFigure& figure, const TextStyle& style) {
+std::string measured_within(const JudgedFigure& figure, const TextStyle& style) {
     if (!figure.uncertainty) return measured_text(figure, "");
     return measured_text(figure, (style.unicode ? " ± " : " +- ") + rounded_text(*figure.uncertainty, 2));
 }
 
-std::string limit_cell(const JudgedFigure& figure, const Rule& rule, const TextStyle& style) {
+std::string limit_with_sign(const JudgedFigure& figure, const Rule& rule, const TextStyle& style) {
     if (!figure.limit) return "none";
     std::string sign = figure.at_least ? (style.unicode ? "≥ " : ">= ") : (style.unicode ? "≤ " : "<= ");
     if (std::holds_alternative<LatencyRule>(rule.kind)) sign = "= ";
@@ -78,9 +78,9 @@ std::string figure_table(const RuleVerdict& verdict, const TextStyle& style) {
     std::string stacked, notes;
     for (const JudgedFigure* figure : shown) {
         const std::string name = printable(figure->name);
-        const std::string measured = measured_cell(*figure, style);
-        const std::string limit = limit_cell(*figure, verdict.rule, style);
-        const std::string margin = figure->margin ? with_unit(rounded_text(*figure->margin), figure->unit) : "none";
+        const std::string measured = measured_within(*figure, style);
+        const std::string limit = limit_with_sign(*figure, verdict.rule, style);
+        const std::string margin = margin_cell(*figure);
         std::string word = figure->passed() ? "" : std::string(name_of(figure->verdict));
         if (figure->value && note_fits_cell(*figure)) word += (word.empty() ? "" : ", ") + printable(figure->note);
         table.rows.push_back({name, measured, limit, margin, word});
@@ -119,8 +119,7 @@ std::string code_cell(const std::vector<Code>& codes, std::size_t i, const Sampl
     return format.has_lsb() ? std::to_string(codes[i]) : rounded_text(value_of(format, codes[i]), 7);
 }
 
-/// Under the figures: what it took, and what it would have taken without looking early.
-std::string evidence_text(const RuleVerdict& verdict) {
+std::string evidence_line(const RuleVerdict& verdict) {
     const Evidence& evidence = *verdict.evidence;
     const std::string length = std::isfinite(evidence.fixed_length_samples) && evidence.fixed_length_samples < 1e15
                                    ? count_text(static_cast<std::int64_t>(evidence.fixed_length_samples))
@@ -178,11 +177,10 @@ std::string rule_block(const RuleVerdict& verdict, const Signal& signal, const T
     out += wrapped(style, asked, inner_indent);
     if (!verdict.reason.empty()) out += wrapped(style, printable_lines(verdict.reason), inner_indent);
     if (!verdict.figures.empty()) out += figure_table(verdict, style);
-    if (verdict.evidence) out += wrapped(style, evidence_text(verdict), inner_indent);
+    if (verdict.evidence) out += wrapped(style, evidence_line(verdict), inner_indent);
     if (verdict.first_bad) {
         const Neighbourhood& around = *verdict.first_bad;
-        std::string line = "first bad sample: " + count_text(around.index);
-        if (signal.rate_hz > 0.0) line += ", at " + time_text(around.index, signal.rate_hz) + " ms";
+        std::string line = "first bad sample: " + first_bad_text(around, signal);
         if (signal.output.has_lsb()) line += "; reference and error in LSB";
         out += wrapped(style, line, inner_indent);
         out += neighbour_table(around, signal, style, inner_indent);
@@ -192,11 +190,20 @@ std::string rule_block(const RuleVerdict& verdict, const Signal& signal, const T
 
 std::string neighbour_table(const Neighbourhood& around, const Signal& signal, const TextStyle& style,
                             std::size_t indent) {
-    const bool lsb = signal.output.has_lsb();
     Table table;
     table.indent = indent;
     table.columns = {{"index", true, 0},    {"time ms", true, 1},   {"stimulus", true, 2},
                      {"response", true, 0}, {"reference", true, 0}, {"error", true, 0}};
+    table.rows = neighbour_rows(around, signal);
+    for (std::vector<std::string>& row : table.rows) {
+        if (row[0] == std::to_string(around.index)) row[0].insert(0, "> ");
+    }
+    return laid_out(style, table);
+}
+
+std::vector<std::vector<std::string>> neighbour_rows(const Neighbourhood& around, const Signal& signal) {
+    const bool lsb = signal.output.has_lsb();
+    std::vector<std::vector<std::string>> cells;
     const std::size_t rows = std::max({around.stimulus.size(), around.response.size(), around.reference.size()});
     for (std::size_t i = 0; i < rows; ++i) {
         const std::int64_t index = around.first_index + static_cast<std::int64_t>(i);
@@ -210,12 +217,29 @@ std::string neighbour_table(const Neighbourhood& around, const Signal& signal, c
                 error = lsb ? fixed_text(got - expected, 3) : rounded_text(got - expected);
             }
         }
-        table.rows.push_back({(index == around.index ? "> " : "") + std::to_string(index),
-                              signal.rate_hz > 0.0 ? time_text(index, signal.rate_hz) : "-",
-                              code_cell(around.stimulus, i, signal.input), code_cell(around.response, i, signal.output),
-                              reference, error});
+        cells.push_back({std::to_string(index), signal.rate_hz > 0.0 ? time_text(index, signal.rate_hz) : "-",
+                         code_cell(around.stimulus, i, signal.input), code_cell(around.response, i, signal.output),
+                         reference, error});
     }
-    return laid_out(style, table);
+    return cells;
+}
+
+std::string measured_cell(const JudgedFigure& figure, const TextStyle& style) { return measured_within(figure, style); }
+
+std::string limit_cell(const JudgedFigure& figure, const Rule& rule, const TextStyle& style) {
+    return limit_with_sign(figure, rule, style);
+}
+
+std::string margin_cell(const JudgedFigure& figure) {
+    return figure.margin ? with_unit(rounded_text(*figure.margin), figure.unit) : "none";
+}
+
+std::string evidence_text(const RuleVerdict& verdict) { return verdict.evidence ? evidence_line(verdict) : ""; }
+
+std::string first_bad_text(const Neighbourhood& around, const Signal& signal) {
+    std::string text = count_text(around.index);
+    if (signal.rate_hz > 0.0) text += ", at " + time_text(around.index, signal.rate_hz) + " ms";
+    return text;
 }
 
 }  // namespace halflsb

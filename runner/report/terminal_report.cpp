@@ -37,7 +37,7 @@ Ink ink_of(CaseVerdict verdict) {
     return Ink::doubtful;
 }
 
-std::string firmware_text(const RunResult& run) {
+std::string firmware_line(const RunResult& run) {
     const std::string id = run.board.build_id.empty() ? "no build-id" : "build-id " + printable(run.board.build_id);
     if (run.firmware.state == FirmwareCheck::State::agrees) {
         return id + ", agrees with " + printable(run.firmware.image_file) +
@@ -105,22 +105,14 @@ std::string invalid_block(const CaseResult& result, const TextStyle& style) {
     } else {
         out += "  the capture is broken, and nobody said why\n";
     }
-    const StreamFacts& stream = result.stream;
-    out += wrapped(style,
-                   "capture " + std::string(name_of(result.grade)) + ": " +
-                       counted(stream.samples_sent, "sample", "samples") + " sent, " +
-                       count_text(stream.samples_received) + " came back; " +
-                       counted(stream.frames_bad_at_host, "bad frame", "bad frames") + " here, " +
-                       counted(stream.resends, "resend", "resends") + "; " + board_counters_text(stream),
-                   2);
-    return out;
+    return out + wrapped(style, stream_text(result), 2);
 }
 
 /// Board, firmware, filter and signal.
 std::string board_lines(const RunResult& run, const TextStyle& style) {
     const std::string serial = run.board.serial.empty() ? "no serial number" : "serial " + printable(run.board.serial);
     std::string out = field(style, "board", serial);
-    out += field(style, "firmware", firmware_text(run));
+    out += field(style, "firmware", firmware_line(run));
     out += field(style, "filter",
                  printable(run.board.filter) + ", samples enter at " + printable(run.board.injection) + "; " +
                      not_seen_from(run.board.injection));
@@ -128,6 +120,13 @@ std::string board_lines(const RunResult& run, const TextStyle& style) {
     return out + field(style, "signal",
                        text_of(signal.input) + " in, " + text_of(signal.output) + " out, " + rate_text(signal.rate_hz) +
                            (signal.channels > 1 ? ", " + std::to_string(signal.channels) + " channels" : ""));
+}
+
+/// Lines or "".
+std::string capture_lines(const RunResult& run, const CaseResult& result, const TextStyle& style) {
+    std::string out;
+    for (const auto& [key, text] : capture_facts(run, result)) out += wrapped(style, padded(key, 10) + text, 2);
+    return out;
 }
 
 std::string purpose_lines(const std::vector<CasePurpose>& cases, const TextStyle& style) {
@@ -156,7 +155,20 @@ std::string taken_lines(const TakenByItself& taken, const TextStyle& style) {
     return out;
 }
 
-/// The signal as the case had it, for times.
+}  // namespace
+
+std::string brief_of(const CaseResult& result) { return case_brief(result); }
+
+std::string firmware_text(const RunResult& run) { return firmware_line(run); }
+
+std::string stream_text(const CaseResult& result) {
+    const StreamFacts& stream = result.stream;
+    return "capture " + std::string(name_of(result.grade)) + ": " + counted(stream.samples_sent, "sample", "samples") +
+           " sent, " + count_text(stream.samples_received) + " came back; " +
+           counted(stream.frames_bad_at_host, "bad frame", "bad frames") + " here, " +
+           counted(stream.resends, "resend", "resends") + "; " + board_counters_text(stream);
+}
+
 Signal signal_of(const RunResult& run, const CaseResult& result) {
     Signal signal = run.signal;
     if (result.rate_hz) signal.rate_hz = *result.rate_hz;
@@ -164,12 +176,9 @@ Signal signal_of(const RunResult& run, const CaseResult& result) {
     return signal;
 }
 
-/// How a case was captured, where that is not as usual: start state, settings, rate, attempts. Lines or "".
-std::string capture_lines(const RunResult& run, const CaseResult& result, const TextStyle& style) {
-    std::string out;
-    const auto add = [&](const char* key, const std::string& text) {
-        out += wrapped(style, padded(key, 10) + text, 2);
-    };
+std::vector<std::pair<std::string, std::string>> capture_facts(const RunResult& run, const CaseResult& result) {
+    std::vector<std::pair<std::string, std::string>> facts;
+    const auto add = [&](const char* key, const std::string& text) { facts.emplace_back(key, text); };
     if (result.start == Start::flush)
         add("start", "flush, " + counted(result.start_samples, "zero", "zeros") + " first");
     if (result.start == Start::running) {
@@ -190,10 +199,8 @@ std::string capture_lines(const RunResult& run, const CaseResult& result, const 
         }
         add("attempts", attempts);
     }
-    return out;
+    return facts;
 }
-
-}  // namespace
 
 std::string not_seen_from(std::string_view injection) {
     if (injection == "call") return "not seen there: the sampling interrupt, DMA, the converter and the analogue path";

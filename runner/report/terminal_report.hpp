@@ -7,6 +7,7 @@
 #include <optional>
 #include <string>
 #include <string_view>
+#include <utility>
 #include <vector>
 
 #include "runner/report/text_style.hpp"
@@ -23,6 +24,21 @@ std::string board_text(const RunResult& run, std::optional<double> wire_s, const
 
 /// run.cases[index]: one line, and below it whatever a reader of a case that did not pass needs.
 std::string case_text(const RunResult& run, std::size_t index, const TextStyle& style);
+
+/// What stands at the end of a case's line: of a passed one its tightest figures, else the rules to blame.
+std::string brief_of(const CaseResult& result);
+
+/// The signal as the case had it, at the rate of its response: for times and indices.
+Signal signal_of(const RunResult& run, const CaseResult& result);
+
+/// How a case was captured, where that is not as usual: start state, settings, rate, attempts, each with its key.
+std::vector<std::pair<std::string, std::string>> capture_facts(const RunResult& run, const CaseResult& result);
+
+/// How the samples of a case travelled.
+std::string stream_text(const CaseResult& result);
+
+/// The board's build-id, and whether it is that of the image.
+std::string firmware_text(const RunResult& run);
 
 /// The last lines: counts, what was not verified, the run's folder, what the report is not.
 std::string summary_text(const RunResult& run, const TextStyle& style);

@@ -96,7 +96,9 @@ RunResult Workshop::record(const std::string& plan, const std::string& folder,
     if (!opened) give_up(to_text(opened.error()));
     if (auto saved = opened->save_inputs(run); !saved) give_up(to_text(saved.error()));
     NobodyWatches nobody;
-    if (auto ran = run_cases(request, board, run, *opened, files, clock, nobody); !ran) run.ended_by = ran.error();
+    HtmlReport report(run.plan_text);
+    if (auto ran = run_cases(request, board, run, *opened, report, files, clock, nobody); !ran)
+        run.ended_by = ran.error();
     if (auto saved = opened->save(run, true, ""); !saved) give_up(to_text(saved.error()));
     run.folder = folder;
     return run;

@@ -60,6 +60,7 @@ struct RunBench {
     RememberingObserver observer;
     RunRequest request;
     RunResult run;
+    HtmlReport report{""};
     FakeLink* line = nullptr;  ///< the board's, once it greeted
 
     RunBench() {
@@ -112,7 +113,7 @@ struct RunBench {
         auto opened = open_run_folder(files, {clock.utc(), "plan.toml", folder / "run"});
         REQUIRE(opened);
         run_folder = opened->path();
-        return run_cases(request, board, run, *opened, files, clock, observer);
+        return run_cases(request, board, run, *opened, report, files, clock, observer);
     }
 
     std::vector<Code> codes_of(const std::string& file, const SampleFormat& format) const {
