@@ -179,6 +179,7 @@ Outcome<CaseResult> judge_capture(const RecordedRun& record, const Plan& plan, c
     CaseResult result = *match.recorded;
     result.number = match.case_index + 1;
     result.returned_per_sent = returned_per_sent(plan, the_case);
+    result.stimulus.values = the_case.stimulus_values;  // equal codes were sent, whichever words made them
     if (result.verdict == CaseVerdict::invalid) return result;
     const std::string shown = record.path_of(result.capture_file);
     const auto path = path_inside(files, record.folder, result.capture_file);

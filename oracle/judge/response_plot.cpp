@@ -17,7 +17,8 @@ constexpr std::size_t points_kept = 128, most_buckets = 140;
 constexpr std::size_t most_marks = 12;
 constexpr double degrees_of_radian = 180.0 / std::numbers::pi;
 
-double db_of(double ratio) { return 20.0 * std::log10(ratio); }
+/// No gain at all stands far below whatever can be measured; NaN stays.
+double db_of(double ratio) { return std::max(20.0 * std::log10(ratio), -400.0); }
 
 struct PointFigures {
     double hz, gain_db, low_db, high_db, design_db;

@@ -91,7 +91,9 @@ void TimeTrace::plot(CasePlots& plots) const {
     // With every sample in the overview there is nothing to look at more closely.
     if (thinned_.bucket_samples() == 1) return;
     if (!from_edge_.rows.empty()) plots.push_back(plot_of(from_edge_, case_.shape + " response, sample by sample"));
-    if (largest_at_ >= 0) {
+    const std::int64_t edge_end = from_edge_.first_index + static_cast<std::int64_t>(from_edge_.rows.size());
+    const bool is_seen = !from_edge_.rows.empty() && largest_at_ >= from_edge_.first_index && largest_at_ < edge_end;
+    if (largest_at_ >= 0 && !is_seen) {
         Plot plot = plot_of(kept_for_ == largest_at_ ? around_largest_ : surroundings(),
                             "around the largest error, sample by sample");
         plot.marks.push_back({static_cast<double>(largest_at_),

@@ -112,8 +112,13 @@ private:
                    "give a limit of at least " + brief(2.0 * found.figure->bound) + ", or the step a higher level");
             return false;
         }
-        if (rule_.final_value && !answer.figures->final_value.figure)
-            return refuse_design("final value", answer.figures->final_value.fault, channel, change);
+        if (!rule_.final_value) return true;
+        const TransitionFigure& final_value = answer.figures->final_value;
+        if (!final_value.figure) return refuse_design("final value", final_value.fault, channel, change);
+        // So slow that it does not seem to move, or not there yet: a right board would fail.
+        const double off = std::fabs(final_value.figure->value - step.levels.second);
+        if (off > std::fabs(value_of(*rule_.final_value, plan_.signal)))
+            return refuse_design("final value", TransitionFault::not_settled, channel, change);
         return true;
     }
 

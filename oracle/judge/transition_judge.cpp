@@ -142,18 +142,12 @@ JudgedFigure TransitionJudge::final_value() const {
     const std::string unit = unit_name(rule_.final_value->in, signal_);
     const TransitionFigure& found = answer_.figures->final_value;
     if (!found.figure) {
-        return {"final value off",
-                std::nullopt,
-                judged(rule_.final_value->number),
-                std::nullopt,
-                unit,
-                false,
-                Verdict::undecided,
-                std::string(reason_of(found.fault))};
+        return {"final error", std::nullopt,       judged(rule_.final_value->number),  std::nullopt, unit,
+                false,         Verdict::undecided, std::string(reason_of(found.fault))};
     }
     const double off = (found.figure->value - step_.levels.second) / worth;
     JudgedFigure figure =
-        decided("final value off", {std::fabs(off), found.figure->standard_uncertainty / std::fabs(worth), 0.0},
+        decided("final error", {std::fabs(off), found.figure->standard_uncertainty / std::fabs(worth), 0.0},
                 answer_.figures->final_value_degrees, {rule_.final_value->number, false}, unit, shares_);
     if (off < 0.0 && figure.note.empty()) figure.note = "below the design's";
     return figure;

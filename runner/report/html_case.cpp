@@ -7,6 +7,7 @@
 #include "runner/report/html_rule.hpp"
 #include "runner/report/html_text.hpp"
 #include "runner/report/people.hpp"
+#include "runner/report/rule_report.hpp"
 #include "runner/report/terminal_report.hpp"
 
 namespace halflsb {
@@ -69,6 +70,21 @@ std::string invalid_html(const CaseResult& result) {
            html_text(why) + "</p>\n";
 }
 
+/// Of a case that did not pass, the figure of each rule to blame.
+std::string blame(const CaseResult& result) {
+    if (result.verdict != CaseVerdict::fail && result.verdict != CaseVerdict::undecided) return brief_of(result);
+    const Verdict blamed = result.verdict == CaseVerdict::fail ? Verdict::fail : Verdict::undecided;
+    std::string text;
+    for (const RuleVerdict& rule : result.rules) {
+        if (rule.verdict != blamed) continue;
+        const std::string title = rule_title(rule), figure = rule_brief(rule);
+        // "latency 1 sample of 0" has its title in it.
+        const std::string part = figure.starts_with(title + " ") ? figure : title + (figure.empty() ? "" : ": " + figure);
+        text += (text.empty() ? "" : "; ") + part;
+    }
+    return text;
+}
+
 /// What decides stands first; each group keeps the order of the plan.
 std::vector<const RuleVerdict*> worst_first(const std::vector<RuleVerdict>& rules) {
     std::vector<const RuleVerdict*> sorted;
@@ -87,7 +103,7 @@ std::string case_row(const RunResult& run, std::size_t index) {
     const std::string word(name_of(result.verdict));
     return "<tr class=\"" + word + "\"><td class=\"number\">" + std::to_string(result.number) + "</td><td><a href=\"#" +
            case_anchor(result) + "\">" + html_text(result.name) + "</a></td><td>" + verdict_html(word) + "</td><td>" +
-           html_text(brief_of(result)) + "</td><td>" + html_text(name_of(result.grade)) + "</td></tr>\n";
+           html_text(blame(result)) + "</td><td>" + html_text(name_of(result.grade)) + "</td></tr>\n";
 }
 
 std::string plots_html(const CaseResult& result, CasePlots plots, std::size_t first_number) {
@@ -115,7 +131,7 @@ std::string case_html(const RunResult& run, std::size_t index, const std::string
                       std::to_string(result.number) + "\" data-verdict=\"" + word + "\"" +
                       (result.verdict == CaseVerdict::pass ? "" : " open") + ">\n";
     out += "<summary><h3>" + verdict_html(word) + " " + html_text(result.name) + "</h3> " +
-           html_element("span", "brief", brief_of(result)) + "</summary>\n";
+           html_element("span", "brief", blame(result)) + "</summary>\n";
     if (result.verdict == CaseVerdict::invalid) out += invalid_html(result);
     for (const RuleVerdict* rule : worst_first(result.rules))
         out += rule_html(*rule, signal, place_html(rule->rule.position, run.plan_file, has_plan_text));

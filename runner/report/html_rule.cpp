@@ -108,9 +108,10 @@ std::string rule_html(const RuleVerdict& verdict, const Signal& signal, const st
            html_text(against(verdict)) + (is_implicit ? std::string("asked of every case") : "asked at " + place) +
            "</small></h4>\n";
     out += reasons(verdict, signal);
-    out += figure_table(verdict);
-    if (verdict.evidence) out += html_element("p", "", evidence_text(verdict)) + "\n";
+    out += "<div class=\"tables\">\n" + figure_table(verdict);
     if (verdict.first_bad) out += neighbours(*verdict.first_bad, signal);
+    out += "</div>\n";
+    if (verdict.evidence) out += html_element("p", "note", evidence_text(verdict)) + "\n";
     return out + "</section>\n";
 }
 

@@ -160,6 +160,9 @@ void show_figures(Page& page) {
     };
     show("a sine that is bent", tone("min_sinad_db = 80\nmin_enob_bits = 12\nmax_thd_db = -80\nmin_sfdr_db = 80\n"),
          bent);
+    Parts folded = tone("max_thd_db = -80\n");
+    folded.stimulus = "shape = \"sine\"\nfrequency_hz = 200\nlength_samples = 4096\nlevel_ratio = 0.9\n";
+    show("a sine that is bent, and harmonics that fold", folded, bent);
     show("a sine in noise, whose distortion cannot be seen", tone("max_thd_db = -80\nmin_sfdr_db = 80\n"), noisy);
     show("a sine in noise, near its limit", tone("min_sinad_db = 42\n"), noisy);
     show("no sine came back", tone("min_sinad_db = 80\n"),
@@ -167,7 +170,7 @@ void show_figures(Page& page) {
     show("a sine of another frequency, to be fitted", tone("min_sinad_db = 80\nfrequency = \"fitted\"\n"),
          [](std::vector<Code> r) {
              for (std::size_t n = 0; n < r.size(); ++n)
-                 r[n] = static_cast<Code>(std::lround(20000.0 * std::sin(0.16 * static_cast<double>(n))));
+                 r[n] = static_cast<Code>(std::lround(20000.0 * std::sin(0.17 * static_cast<double>(n))));
              return r;
          });
 
@@ -230,9 +233,14 @@ void show_quiet_rules(Page& page) {
         for (Code& code : r) code /= 2;
         return r;
     });
+    show("noise that comes through stronger than the design says",
+         "kind = \"noise\"\nmax_gain_db = 0.5\nrelative_to = \"design\"\n", noise, [](std::vector<Code> r) {
+             for (Code& code : r) code += code / 2;
+             return r;
+         });
     show("noise that does not come through", gains, noise,
          [](std::vector<Code> r) { return std::vector<Code>(r.size()); });
-    show("noise of a board near its limit", "kind = \"noise\"\nmax_excess_lsb = 4.92\ndelta_db = 0.001\n", noise,
+    show("noise of a board near its limit", "kind = \"noise\"\nmax_excess_lsb = 4.9062\ndelta_db = 0.001\n", noise,
          [&](std::vector<Code> r) {
              return each(r, [](std::size_t n) { return static_cast<Code>(n * 7919 % 20011 % 17) - 8; });
          });

@@ -5,6 +5,7 @@ import os
 import re
 import subprocess
 import time
+import urllib.error
 import urllib.request
 
 # A browser starts in 1 to 3 s; generous, for a loaded machine.
@@ -22,15 +23,15 @@ class Browser:
         # Port 0: the driver takes a free one and says which.
         self.driver = subprocess.Popen(["chromedriver", "--port=0"], stdout=subprocess.PIPE, stderr=subprocess.DEVNULL,
                                        text=True, start_new_session=True, env={**os.environ, "LC_ALL": "C.UTF-8"})
-        self.base = None
-        for line in self.driver.stdout:
-            if found := re.search(r"on port (\d+)", line):
-                self.base = f"http://127.0.0.1:{found[1]}"
-                break
-        assert self.base, "chromedriver names no port"
-        wanted = {"browserName": "chrome", "goog:loggingPrefs": {"browser": "ALL"},
-                  "goog:chromeOptions": {"args": self.arguments}}
-        begun = self.ask("POST", "/session", {"capabilities": {"alwaysMatch": wanted}}, START_S)
+        try:
+            said = next((line for line in self.driver.stdout if "successfully on port" in line), "")
+            self.base = f"http://127.0.0.1:{re.search('[0-9]+', said)[0]}"
+            wanted = {"browserName": "chrome", "goog:loggingPrefs": {"browser": "ALL"},
+                      "goog:chromeOptions": {"args": self.arguments}}
+            begun = self.ask("POST", "/session", {"capabilities": {"alwaysMatch": wanted}}, START_S)
+        except BaseException:
+            self.end_driver()
+            raise
         self.session = f"/session/{begun['sessionId']}"
         return self
 
@@ -38,9 +39,12 @@ class Browser:
         try:
             self.ask("DELETE", self.session)
         finally:
-            self.driver.terminate()
-            self.driver.wait(20)
-            self.driver.stdout.close()
+            self.end_driver()
+
+    def end_driver(self):
+        self.driver.terminate()
+        self.driver.wait(20)
+        self.driver.stdout.close()
 
     def ask(self, method, path, body=None, limit_s=ANSWER_S):
         data = None if method == "GET" else json.dumps(body or {}).encode()

@@ -2,6 +2,9 @@
 // Text of the data is only ever set as text.
 'use strict';
 (() => {
+  // Its legend would set a style attribute, which the page does not allow itself; the page has one of its own.
+  Dygraph.PLUGINS = Dygraph.PLUGINS.filter((plugin) => plugin !== Dygraph.Plugins.Legend);
+
   const dark = matchMedia('(prefers-color-scheme: dark)');
   const roles = {
     stimulus: {width: 1, dash: null},
@@ -23,10 +26,7 @@
   const finite = (value) => value !== null && Number.isFinite(value);
   const short = (value, digits = 4) => {
     if (!finite(value)) return 'no number';
-    if (value === 0) return '0';
-    const size = Math.abs(value);
-    if (size >= 1e6 || size < 1e-4) return value.toExponential(digits - 1);
-    return String(Number(value.toPrecision(Math.max(digits, size >= 1 && Number.isInteger(value) ? 7 : 0))));
+    return String(Number(value.toPrecision(Number.isInteger(value) ? Math.max(digits, 10) : digits)));
   };
   const timeText = (seconds) => {
     const size = Math.abs(seconds);
@@ -78,7 +78,8 @@
         low = Math.max(low, lowest - 40);
       }
       for (const end of ends) {
-        if (Math.abs(end) > 60 * Math.max(Math.abs(low), Math.abs(high), span) && this.data.unit !== 'dB') continue;
+        const size = Math.max(Math.abs(low), Math.abs(high), span);
+        if (size > 0 && Math.abs(end) > 60 * size && this.data.unit !== 'dB') continue;
         low = Math.min(low, end);
         high = Math.max(high, end);
       }
@@ -183,7 +184,15 @@
         canvas.stroke();
         const isRight = x > area.x + area.w * 0.6;
         canvas.textAlign = isRight ? 'right' : 'left';
-        if (this === this.plot.panels[0]) canvas.fillText(mark.text, x + (isRight ? -4 : 4), area.y + 13 + 14 * (taken++ % 6));
+        if (this !== this.plot.panels[0]) continue;
+        const at = [mark.text, x + (isRight ? -4 : 4), area.y + 13 + 14 * (taken++ % 6)];
+        canvas.setLineDash([]);
+        canvas.lineWidth = 4;
+        canvas.strokeStyle = colour('ground');
+        canvas.strokeText(...at);
+        canvas.fillText(...at);
+        canvas.lineWidth = 1;
+        canvas.setLineDash([2, 3]);
       }
       canvas.restore();
     }
@@ -396,13 +405,18 @@
   dark.addEventListener('change', () => drawn.forEach((plot) => plot.recolour()));
   let closed = [];
   addEventListener('beforeprint', () => {
-    closed = [...document.querySelectorAll('details.case:not([open])')];
+    closed = [...document.querySelectorAll('details.case:not([open]), #plan:not([open])')];
     for (const details of closed) details.open = true;
+    // Paper is light.
+    document.documentElement.dataset.printing = 'yes';
     drawIn(document);
     drawn.forEach((plot) => { plot.resize(); plot.recolour(); });
+    // A canvas that was never on the screen prints empty unless it has been read.
+    for (const canvas of document.querySelectorAll('.panel canvas')) if (canvas.width > 0) canvas.getContext('2d').getImageData(0, 0, 1, 1);
   });
   addEventListener('afterprint', () => {
     for (const details of closed) details.open = false;
+    delete document.documentElement.dataset.printing;
     drawn.forEach((plot) => { plot.resize(); plot.recolour(); });
   });
   watch();

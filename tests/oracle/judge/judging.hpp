@@ -9,11 +9,11 @@
 
 namespace halflsb::test {
 
-/// `block` counts instants. `replays`, when given, counts how often the capture was read again.
+/// `block` counts instants. Plots are made beside, which must change nothing. `replays`, when given, counts how often the capture was read again.
 inline CaseJudgement judge(const Plan& plan, const Case& the_case, const std::vector<Code>& response,
                            std::size_t block = 256, int* replays = nullptr) {
     const auto channels = static_cast<std::size_t>(plan.signal.channels);
-    CaseJudge judge(plan, the_case);
+    CaseJudge judge(plan, the_case, true);
     for (std::size_t first = 0; first < response.size(); first += block * channels)
         judge.add(std::span(response).subspan(first, std::min(block * channels, response.size() - first)));
     auto judgement = judge.finish([&](std::int64_t first, std::span<Code> codes) -> Outcome<void> {

@@ -95,6 +95,10 @@ TEST_CASE("transition check: a record that ends too early names the length that 
     CHECK(only(refused(plan, "step", step(64, 300), rise)).problem.starts_with("the rise of the design itself"));
     CHECK(only(refused(plan, "step", step(64, 900), values({{"final_lsb", 2.0}})))
               .problem.starts_with("the final value of the design itself"));
+    // The mean of the last 484 of 1936 samples is 16384 exp(-1936 / 300) (exp(484 / 300) - 1) 300 / 484 = 64 LSB short.
+    CHECK(refused(plan, "step", step(64, 2000), values({{"final_lsb", 66.0}})).empty());
+    CHECK(only(refused(plan, "step", step(64, 2000), values({{"final_lsb", 62.0}}))).problem ==
+          "the final value of the design itself cannot be told: the record ends before the response has settled");
     CHECK(only(refused(plan, "step", step(20, 30), rise)).problem.starts_with("the figures of the design itself"));
     // An hour of ringing: nobody knows how long.
     const double slow = 1.0 - 1e-9;
