@@ -46,7 +46,7 @@ std::size_t count_of(const TransitionRule& rule) { return limited_figures(rule).
 /// The step as it stands in the response at that lag.
 StepWindow shifted(StepWindow step, int lag_samples, std::int64_t returned) {
     step.step += lag_samples;
-    step.window.begin = std::max<std::int64_t>(step.window.begin + lag_samples, 0);
+    step.window.begin += std::max(lag_samples, 0);  // an early response is judged from the same sample on
     step.window.end = std::min(step.window.end + lag_samples, returned - std::max(-lag_samples, 0));
     return step;
 }
@@ -70,7 +70,10 @@ public:
 
     void finish() override {
         question_ = transition_question(rule_, signal_, step_);
-        answer_ = measure_transition(question_, record_);
+        // Of a response that was cut short (predict looks at the first samples) the end is not the end.
+        const bool is_whole = static_cast<std::int64_t>(record_.size()) == step_.window.samples();
+        answer_ = is_whole ? measure_transition(question_, record_)
+                           : TransitionAnswer{std::nullopt, TransitionFault::too_short};
         if (answer_.figures) last_outside_ = last_outside();
         samples_ = record_.size();
         record_ = {};

@@ -46,7 +46,10 @@ return {x: box.x, y: box.y, width: box.width, height: box.height, from: Number(p
 INK = """
 let ink = 0;
 for (const canvas of document.querySelectorAll('.plot')[arguments[0]].querySelectorAll('.panel canvas')) {
-  const bytes = canvas.getContext('2d').getImageData(0, 0, canvas.width, canvas.height).data;
+  // A copy: the browser logs advice about canvases that are read.
+  const copy = new OffscreenCanvas(canvas.width, canvas.height).getContext('2d', {willReadFrequently: true});
+  copy.drawImage(canvas, 0, 0);
+  const bytes = copy.getImageData(0, 0, canvas.width, canvas.height).data;
   for (let i = 3; i < bytes.length; i += 4) if (bytes[i] > 0) ++ink;
 }
 return ink;

@@ -100,7 +100,7 @@ length_samples = 4096
         self.assert_status(done, 0)
         self.assertEqual(self.verdicts(record)["transition"], "pass")
         self.cleanup_run()
-        for fault, bad in (("S02", "rise"), ("C05", "final error")):
+        for fault, bad in (("S02", "settling"), ("C05", "final error")):
             with self.subTest(fault):
                 done, record = self.run_with("--fault", fault, cases=step, rules=rule)
                 self.assert_status(done, 1)

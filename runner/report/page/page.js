@@ -409,10 +409,13 @@
     for (const details of closed) details.open = true;
     // Paper is light.
     document.documentElement.dataset.printing = 'yes';
+    const before = drawn.length;
     drawIn(document);
     drawn.forEach((plot) => { plot.resize(); plot.recolour(); });
     // A canvas that was never on the screen prints empty unless it has been read.
-    for (const canvas of document.querySelectorAll('.panel canvas')) if (canvas.width > 0) canvas.getContext('2d').getImageData(0, 0, 1, 1);
+    for (const plot of drawn.slice(before)) {
+      for (const canvas of plot.figure.querySelectorAll('.panel canvas')) if (canvas.width > 0) canvas.getContext('2d').getImageData(0, 0, 1, 1);
+    }
   });
   addEventListener('afterprint', () => {
     for (const details of closed) details.open = false;

@@ -159,7 +159,7 @@ TEST_CASE("plots: what a running case discards is not shown", "[judge]") {
 TEST_CASE("plots: what is no number is a gap with a mark, and the place to look at", "[judge]") {
     Plan plan = test::moving_average_plan();
     plan.signal.input = plan.signal.output = *sample_format("f32");
-    const Rule rule = test::rule(plan, "error", values({{"max_full_scale_ratio", 1e-3}}));
+    const Rule rule = test::rule(plan, "error", values({{"max_ratio", 1e-3}}));
     for (const std::int64_t length : {700, 20000}) {
         const Case the_case = test::a_case(plan, "noise", noise_of(length), {rule});
         auto response = test::right_response(plan, the_case);

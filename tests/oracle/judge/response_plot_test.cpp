@@ -91,7 +91,8 @@ TEST_CASE("response plot: tones have a point each", "[judge]") {
         plan, "multitone",
         values({{"level_ratio", 0.9}, {"frequencies_hz", tones}, {"length_samples", std::int64_t{12000}}}),
         {band_rule(plan, {{20.0, 100.0, -20.0, 1.0}}), test::implicit_latency()});
-    const Plot& plot = gain_plot(judge(plan, the_case, test::right_response(plan, the_case)));
+    const CaseJudgement judgement = judge(plan, the_case, test::right_response(plan, the_case));
+    const Plot& plot = gain_plot(judgement);
     REQUIRE(plot.x.size() == 3);
     for (std::size_t i = 0; i < 3; ++i) CHECK(plot.x[i] == Approx(tones[i]));
 }

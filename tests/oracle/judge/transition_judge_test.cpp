@@ -139,6 +139,10 @@ TEST_CASE("transition rule: what cannot be measured is undecided, never failed",
         near.reason ==
         "the rise is too near its limit to tell with these codes and this noise; give the step a higher level, or the "
         "limit more room");
+    // Cut off while it swings: nobody knows what would have come.
+    auto cut = right;
+    cut.resize(80);
+    CHECK(verdict_on(plan, the_case, cut).reason == "the transition cannot be judged: too few samples");
     Plan floats = plan;
     floats.signal.input = floats.signal.output = *sample_format("f32");
     const Case of_floats = step_case(floats, values({{"max_rise_samples", 13.0}}));
