@@ -83,12 +83,19 @@ private:
         text_ += "[[case]]\nname    = \"" + std::string(name) + "\"\npurpose = \"" + std::string(purpose) + "\"\n";
         if (!label.empty()) text_ += "labels  = [\"" + std::string(label) + "\"]\n";
         text_ += "[case.stimulus]\n" + stimulus.joined("\n") + "\n";
-        const std::string unit = signal_.output.has_lsb() ? "lsb" : "ratio";
+        const std::string unit = limit_unit();
         text_ += "[[case.rule]]\nkind = \"error\"\n";
         for (const std::string_view what : {"max", "rms", "bias"})
             text_ += std::string(what) + "_" + unit + " = \"derived\"\n";
         text_ += "[[case.rule]]\nkind = \"exact\"\n\n";
     }
+
+    /// A case that ends in silence.
+    void add_silent(std::string_view name, std::string_view purpose, Words stimulus) {
+        add(name, purpose, std::move(stimulus));
+        text_ += "[[case.rule]]\nkind = \"silence\"\nmax_" + limit_unit() + " = \"derived\"\n\n";
+    }
+    std::string limit_unit() const { return signal_.output.has_lsb() ? "lsb" : "ratio"; }
 
     /// A level of so many codes; of a format without codes the same part of 16 bits.
     Words codes(Words words, std::int64_t count) const {
@@ -100,8 +107,8 @@ private:
     }
 
     void add_quiet() {
-        add("silence", "an offset, noise of its own, memory that a reset does not clear",
-            placed("silence", memory_ + 1024));
+        add_silent("silence", "an offset, noise of its own, memory that a reset does not clear",
+                   placed("silence", memory_ + 1024));
     }
 
     /// Apart by lengths that are odd and even, so that they meet other places of a ring and of an unrolled loop.
@@ -173,7 +180,7 @@ private:
     }
 
     void add_after_loud() {
-        add("silence after full scale", "state that outlives a reset", placed("silence", memory_ + 256));
+        add_silent("silence after full scale", "state that outlives a reset", placed("silence", memory_ + 256));
     }
 
     void add_full_scale() {
@@ -218,8 +225,8 @@ private:
 
     void add_tail() {
         const std::int64_t loud = std::max<std::int64_t>(memory_, 512);
-        add("silence after noise", "a limit cycle, a dead band, a value that stays",
-            sequence({at_level(placed("noise", loud), quiet_level()), placed("silence", 2 * memory_ + 512)}));
+        add_silent("silence after noise", "a limit cycle, a dead band, a value that stays",
+                   sequence({at_level(placed("noise", loud), quiet_level()), placed("silence", 2 * memory_ + 512)}));
     }
 
     void add_channels() {

@@ -68,6 +68,12 @@ TEST_CASE("standard set: a plan of [signal] and [[filter]] alone is a plan", "[c
     }
 }
 
+TEST_CASE("standard set: what is silent at its end is held to silence", "[config]") {
+    const Plan plan = plan_of(signal_text + low_pass_text + "[filter.arithmetic]\ncoefficient_fraction_bits = 14\n");
+    for (const Case& the_case : plan.cases)
+        CHECK(has<SilenceRule>(the_case) == (the_case.name.rfind("silence", 0) == 0));
+}
+
 TEST_CASE("standard set: with the whole arithmetic every case asks for the bits", "[config]") {
     const Plan plan = plan_of(signal_text + whole_arithmetic + mean_text);
     for (const Case& the_case : plan.cases) CHECK(has<ExactRule>(the_case));
