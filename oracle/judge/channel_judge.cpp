@@ -104,7 +104,8 @@ std::optional<RuleVerdict> ChannelJudge::latency_verdict(const Rule& rule) const
     if (!judged_.is_driven()) return std::nullopt;
     RuleVerdict verdict{rule, Verdict::undecided, "declared", {}, {}, std::nullopt};
     JudgedFigure figure{
-        "latency", std::nullopt, static_cast<double>(expected_lag_), std::nullopt, "samples", false, Verdict::pass, {}};
+        "latency", std::nullopt, static_cast<double>(expected_lag_), std::nullopt, "samples", false, Verdict::undecided,
+        {}};
     switch (latency_found()) {
         case Latency::not_told:
             if (std::get<LatencyRule>(rule.kind).implicit) return std::nullopt;
@@ -114,7 +115,7 @@ std::optional<RuleVerdict> ChannelJudge::latency_verdict(const Rule& rule) const
             verdict.reason = "the response holds a value that is not a finite number, so it fits at no lag";
             break;
         case Latency::as_expected:
-            verdict.verdict = Verdict::pass;
+            verdict.verdict = figure.verdict = Verdict::pass;
             figure.value = expected_lag_;
             break;
         case Latency::other:
