@@ -131,7 +131,18 @@ std::optional<RuleVerdict> ChannelJudge::latency_verdict(const Rule& rule) const
             break;
     }
     verdict.figures.push_back(std::move(figure));
+    add_fraction(rule, verdict);
     return verdict;
+}
+
+void ChannelJudge::add_fraction(const Rule& rule, RuleVerdict& verdict) const {
+    const Latency found = latency_found();
+    if (found == Latency::not_told || found == Latency::not_finite) return;
+    auto fraction = (found == Latency::other ? second_->pass : pass_).verdict(rule, nullptr);
+    if (!fraction) return;
+    for (JudgedFigure& figure : fraction->figures) verdict.figures.push_back(std::move(figure));
+    verdict.verdict = std::max(verdict.verdict, fraction->verdict);
+    if (!fraction->reason.empty()) verdict.reason += (verdict.reason.empty() ? "" : "; ") + fraction->reason;
 }
 
 void ChannelJudge::plot(CasePlots& plots) const {
