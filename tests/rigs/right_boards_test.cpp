@@ -263,7 +263,7 @@ std::string told(const Totals& totals) {
 
 }  // namespace
 
-TEST_CASE("right boards: none of a hundred fails any rule", "[rigs]") {
+TEST_CASE("none of a hundred fails any rule", "[rigs]") {
     constexpr std::uint64_t seed = 20261210;
     const Totals totals = over_right_boards(seed, rounds_of(100), 50);
     INFO(told(totals));
@@ -277,7 +277,7 @@ TEST_CASE("right boards: none of a hundred fails any rule", "[rigs]") {
     }
 }
 
-TEST_CASE("right boards: nor does one of 10,000", "[rigs][.long]") {
+TEST_CASE("nor does one of 10,000", "[rigs][.long]") {
     constexpr std::uint64_t seed = 20261211;
     const char* asked = std::getenv("HALFLSB_RIGHT_BOARDS");
     const std::int64_t boards = asked != nullptr ? std::atoll(asked) : 10'000;
