@@ -85,6 +85,7 @@ struct Plan {
     std::string file;
     Signal signal;
     FilterChain filter;  ///< as written, stages of every channel
+    std::vector<PlanPosition> filter_positions = {};  ///< where each stage stands; empty of a plan that no file has
     std::vector<Case> cases;
     Certainty certainty = {};
     bool streams_whole = false;        ///< each stimulus to its end, also when the rules of its case are decided

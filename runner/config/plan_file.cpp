@@ -190,6 +190,7 @@ private:
         plan_.file = shown_name_;
         plan_.signal = *facts.signal;
         plan_.filter = facts.filters->chain;
+        plan_.filter_positions = facts.filters->positions;
         plan_.filter_is_unknown = facts.filters->is_unknown;
         const bool is_whole = problems_.count() == 0;
         for (ReadCase& read : cases) {
