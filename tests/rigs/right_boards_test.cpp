@@ -227,11 +227,12 @@ void judge_standard_set(const RightBoard& board, Totals& totals) {
     }
 }
 
-/// One in `standard_each` under the standard set of a random plan; of the others one in eight a C filter.
-Totals over_right_boards(std::uint64_t seed, std::int64_t boards, std::int64_t standard_each) {
+/// One in `standard_each` under the standard set of a random plan; of the others one in eight a C filter. Numbers from
+/// `first` on.
+Totals over_right_boards(std::uint64_t seed, std::int64_t first, std::int64_t boards, std::int64_t standard_each) {
     Totals totals;
     const FirmwareBoards firmware;
-    for (std::int64_t number = 0; totals.boards < boards; ++number) {
+    for (std::int64_t number = first; totals.boards < boards; ++number) {
         // Each draws of its own: a board that failed is found again by its number alone.
         Random random(seed * 1'000'003 + static_cast<std::uint64_t>(number));
         INFO("seed " << seed << ", board " << number);
@@ -252,6 +253,11 @@ Totals over_right_boards(std::uint64_t seed, std::int64_t boards, std::int64_t s
     return totals;
 }
 
+std::int64_t asked_or(const char* variable, std::int64_t otherwise) {
+    const char* asked = std::getenv(variable);
+    return asked != nullptr ? std::atoll(asked) : otherwise;
+}
+
 std::string told(const Totals& totals) {
     std::string text;
     for (const auto& [kind, counts] : totals.verdicts) {
@@ -265,7 +271,7 @@ std::string told(const Totals& totals) {
 
 TEST_CASE("none of a hundred fails any rule", "[rigs]") {
     constexpr std::uint64_t seed = 20261210;
-    const Totals totals = over_right_boards(seed, rounds_of(100), 50);
+    const Totals totals = over_right_boards(seed, 0, rounds_of(100), 50);
     INFO(told(totals));
     CHECK(totals.fails == 0);
     // All of it must have happened.
@@ -278,10 +284,11 @@ TEST_CASE("none of a hundred fails any rule", "[rigs]") {
 }
 
 TEST_CASE("nor does one of 10,000", "[rigs][.long]") {
-    constexpr std::uint64_t seed = 20261211;
-    const char* asked = std::getenv("HALFLSB_RIGHT_BOARDS");
-    const std::int64_t boards = asked != nullptr ? std::atoll(asked) : 10'000;
-    const Totals totals = over_right_boards(seed, boards, 20);
+    const auto seed = static_cast<std::uint64_t>(asked_or("HALFLSB_RIGHT_SEED", 20261211));
+    const std::int64_t boards = asked_or("HALFLSB_RIGHT_BOARDS", 10'000);
+    // One that failed, alone.
+    const std::int64_t alone = asked_or("HALFLSB_RIGHT_BOARD", -1);
+    const Totals totals = alone < 0 ? over_right_boards(seed, 0, boards, 20) : over_right_boards(seed, alone, 1, 20);
     std::printf(
         "right boards through the whole judging: those that fail any rule | 0 of %lld | %lld of %lld checks, %lld "
         "cases, %lld samples; %s; seed %llu\n",
