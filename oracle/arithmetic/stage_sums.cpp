@@ -22,7 +22,11 @@ int StageSums::spare_of(const Word& word) const {
     return &word == &stage.state ? state_spare : 0;
 }
 
-Term StageSums::whole(const Word& word) const { return {1.0, 1, word.fraction_bits, word, spare_of(word)}; }
+Term StageSums::whole(const Word& word) const {
+    Term term{1.0, 1, word.fraction_bits, word, spare_of(word)};
+    if (&word == &stage.state) term.of = Term::Of::state;
+    return term;
+}
 
 Term StageSums::term(double coefficient, const Word& word) const {
     const int bits = stage.coefficient_fraction_bits;
@@ -34,7 +38,7 @@ Term StageSums::term(double coefficient, const Word& word) const {
 Term StageSums::feedback(double a, const Word& word) const {
     const bool is_subtracted = stage.feedback_coefficients == FeedbackCoefficients::subtracted;
     Term product = term(is_subtracted ? a : -a, word);
-    product.is_feedback = true;
+    product.of = Term::Of::feedback;
     product.is_subtracted = is_subtracted;
     return product;
 }
@@ -96,7 +100,7 @@ SumTarget StageSums::at_section(std::string what, std::size_t section, RoundingP
     }
     target.place = place;
     target.node = {exact.first_of[index], section, false};
-    target.from_input = path_from_input(exact.stages, target.node);
+    target.from_input = target.from_input_of_feedback = path_from_input(exact.stages, target.node);
     if (section > 0) target.from_input_of_terms = path_from_input(exact.stages, {target.node.stage, section - 1});
     return target;
 }

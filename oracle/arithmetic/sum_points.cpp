@@ -81,8 +81,8 @@ void SumPoints::add_sum(std::vector<Term> terms, const SumTarget& target) {
     int most = terms.front().fraction_bits;
     for (const Term& t : terms) most = std::max(most, t.fraction_bits);
     const int accumulator = accumulator_fraction_bits_of(stage_, most, target.fraction_bits);
-    add_products(terms, target, accumulator, false);
-    add_products(terms, target, accumulator, true);
+    for (const Term::Of of : {Term::Of::input, Term::Of::state, Term::Of::feedback})
+        add_products(terms, target, accumulator, of);
     if (!is_known()) {
         if (stage_.rounding_at != RoundingAt::product)
             add_shortening(target, designed_numbers(terms, target.fraction_bits));
@@ -93,21 +93,25 @@ void SumPoints::add_sum(std::vector<Term> terms, const SumTarget& target) {
     add_shortening(target, numbers);
 }
 
-// Forward products and those of feedback are two points: the errors of one word by several coefficients go together.
-void SumPoints::add_products(const std::vector<Term>& terms, const SumTarget& target, int accumulator,
-                             bool of_feedback) {
+// Forward products, the state that is added and the products of feedback are points of their own: the errors of one
+// word by several coefficients go together, and of silence only the first lose nothing.
+void SumPoints::add_products(const std::vector<Term>& terms, const SumTarget& target, int accumulator, Term::Of of) {
     SumTarget products = target;
     products.rounding = stage_.rounding;  // whatever the rounding of the sum is
-    products.what += of_feedback ? ", products of feedback" : ", products";
+    products.what += of == Term::Of::feedback ? ", products of feedback"
+                     : of == Term::Of::state  ? ", state"
+                                              : ", products";
     products.fraction_bits = accumulator;
     RoundingPoint point = point_at(products);
     point.count = 0;
     point.factor = unlimited;
-    point.is_of_input = !of_feedback && target.multiplies_input;
-    point.from_input = of_feedback ? target.from_input : target.from_input_of_terms;
+    point.is_of_input = of == Term::Of::input && target.multiplies_input;
+    point.from_input = of == Term::Of::feedback ? target.from_input_of_feedback
+                       : of == Term::Of::state  ? target.from_input_of_state
+                                                : target.from_input_of_terms;
     const bool any = stage_.rounding_at == RoundingAt::product && !is_known();
     for (const Term& t : terms) {
-        if (t.is_feedback != of_feedback || (!any && !stage_.coefficients_are_said)) continue;
+        if (t.of != of || (!any && !stage_.coefficients_are_said)) continue;
         Term product = t;
         product.is_subtracted = false;
         const RoundedNumbers numbers =
