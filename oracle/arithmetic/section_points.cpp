@@ -54,10 +54,10 @@ public:
             if (!stays_wide) here_.add_output(j);
         }
         here_.in = stays_wide ? here_.stage.state : here_.stage.out.word;
-        here_.in_spare = stays_wide ? here_.state_spare : 0;
-        if (!stays_wide && here_.stage.structure != Structure::direct_2 &&
-            here_.stage.structure != Structure::transposed_2) {
-            here_.set_spare_out(here_.stage.state.fraction_bits - here_.state_spare);
+        if (stays_wide) {
+            here_.in_spare = here_.state_spare;
+        } else {
+            here_.set_spare_out(here_.result_bits);
         }
     }
 

@@ -11,13 +11,6 @@ namespace {
 
 constexpr double unlimited = std::numeric_limits<double>::infinity();
 
-/// Of a double: c is a multiple of 2^-n for the least such n.
-int fraction_bits_of(double c) {
-    int exponent = 0;
-    const auto mantissa = static_cast<std::int64_t>(std::ldexp(std::frexp(c, &exponent), 53));
-    return 53 - exponent - std::countr_zero(static_cast<std::uint64_t>(mantissa));
-}
-
 /// Numbers of which nothing says how finely the firmware stores their coefficients. Taken as they are designed, they
 /// are multiples of a fraction all the same: 1/4 for a mean of four, practically none for most filters.
 RoundedNumbers designed_numbers(const std::vector<Term>& terms, int target_bits) {
@@ -35,6 +28,12 @@ double power_of_two(int exponent) { return std::ldexp(1.0, exponent); }
 
 }  // namespace
 
+int fraction_bits_of(double c) {
+    int exponent = 0;
+    const auto mantissa = static_cast<std::int64_t>(std::ldexp(std::frexp(c, &exponent), 53));
+    return 53 - exponent - std::countr_zero(static_cast<std::uint64_t>(mantissa));
+}
+
 std::optional<Rounding> SumPoints::rounding_of(const SumTarget& target) const {
     return stage_.rounding_is_said ? std::optional(target.rounding) : std::nullopt;
 }
@@ -47,6 +46,7 @@ RoundingPoint SumPoints::point_at(const SumTarget& target) const {
     point.node.in_feedback = target.place == RoundingPoint::Place::loop;
     point.place = target.place;
     point.step = power_of_two(-target.fraction_bits);
+    point.coarsest_step = coarsest_step;
     point.from_input = target.from_input;
     return point;
 }

@@ -5,6 +5,9 @@
 
 namespace halflsb {
 
+/// Of a double other than 0: c is a multiple of 2^-n for the least such n.
+int fraction_bits_of(double c);
+
 /// A product of a sum: stored coefficient times words.
 struct Term {
     double coefficient = 1.0;  ///< as a value
@@ -45,6 +48,7 @@ public:
     RoundingPoint point_at(const SumTarget& target) const;
 
     std::vector<RoundingPoint> points;
+    double coarsest_step = 0.0;  ///< of the points that follow
 
 private:
     bool is_known() const { return stage_.rounding_is_said && stage_.coefficients_are_said; }
