@@ -24,7 +24,7 @@ public:
         : here_(chain, exact, index, used) {}
 
     /// Of what find() has left the stage.
-    UsedBits used_out() const { return {here_.in_spare, here_.sums.coarsest_step}; }
+    UsedBits used_out() const { return {here_.in_spare, here_.sums.coarsest_step, here_.may_lean()}; }
 
     std::vector<RoundingPoint> find() {
         const FilterDesign& design = here_.exact.stages[here_.exact.first_of[here_.index]].design;
@@ -78,7 +78,7 @@ private:
         const bool is_exact = !target.saves_fraction && here_.stage.division != Division::reciprocal;
         const auto parts_of = [odd](int fraction_bits) { return odd * power_of_two(std::max(0, fraction_bits)); };
         here_.sums.add_shortening(target, {parts_of(bits), is_exact ? -top : -unlimited, is_exact ? top : unlimited,
-                                           parts_of(bits - here_.in_spare)});
+                                           parts_of(bits - here_.in_spare), here_.in_may_lean});
         here_.set_spare_out(here_.stage.out.word.fraction_bits + (odd == 1.0 ? bits - here_.in_spare : 0));
     }
 

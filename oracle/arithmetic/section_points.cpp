@@ -54,6 +54,7 @@ public:
             if (!stays_wide) here_.add_output(j);
         }
         here_.in = stays_wide ? here_.stage.state : here_.stage.out.word;
+        here_.in_may_lean = here_.may_lean();
         if (stays_wide) {
             here_.in_spare = here_.state_spare;
         } else {

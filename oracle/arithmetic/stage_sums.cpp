@@ -22,6 +22,7 @@ StageSums::StageSums(const DescribedChain& chain, const ExactChain& exact_chain,
       index(stage_index),
       in(stage.in.word),
       in_spare(used.spare),
+      in_may_lean(used.may_lean_to_even),
       sums(stage, stage_index) {
     sums.coarsest_step = std::max(used.coarsest_step, std::ldexp(1.0, -in_bits()));
 }
@@ -32,17 +33,29 @@ int StageSums::spare_of(const Word& word) const {
     return &word == &stage.state ? state_spare : 0;
 }
 
+bool StageSums::may_lean() const {
+    return in_may_lean || (stage.rounding_is_said &&
+                           (stage.rounding == Rounding::half_even || stage.output_rounding == Rounding::half_even));
+}
+
+bool StageSums::leans(const Word& word) const {
+    return &word == &in || &word == &stage.in.word ? in_may_lean : may_lean();
+}
+
 Term StageSums::whole(const Word& word) const {
     Term term{1.0, 1, word.fraction_bits, word, spare_of(word)};
     if (&word == &stage.state) term.of = Term::Of::state;
+    term.may_lean_to_even = leans(word);
     return term;
 }
 
 Term StageSums::term(double coefficient, const Word& word) const {
     const int bits = stage.coefficient_fraction_bits;
     const bool is_known = stage.coefficients_are_said;
-    return {coefficient, is_known ? static_cast<std::int64_t>(std::ldexp(coefficient, bits)) : 1,
-            word.fraction_bits + bits, word, spare_of(word)};
+    Term product{coefficient, is_known ? static_cast<std::int64_t>(std::ldexp(coefficient, bits)) : 1,
+                 word.fraction_bits + bits, word, spare_of(word)};
+    product.may_lean_to_even = leans(word);
+    return product;
 }
 
 Term StageSums::feedback(double a, const Word& word) const {
@@ -109,8 +122,8 @@ void StageSums::add_output(std::size_t section) {
     constexpr double unlimited = std::numeric_limits<double>::infinity();
     SumTarget target = at_section("output", section, RoundingPoint::Place::behind);
     target.rounding = stage.output_rounding;
-    sums.add_shortening(
-        target, {std::ldexp(1.0, bits), -unlimited, unlimited, std::ldexp(1.0, std::max(0, bits - state_spare))});
+    sums.add_shortening(target, {std::ldexp(1.0, bits), -unlimited, unlimited,
+                                 std::ldexp(1.0, std::max(0, bits - state_spare)), may_lean()});
 }
 
 FilterChain StageSums::exact_up_to(std::size_t stage_end) const {

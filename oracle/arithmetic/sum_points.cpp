@@ -11,6 +11,10 @@ namespace {
 
 constexpr double unlimited = std::numeric_limits<double>::infinity();
 
+bool any_leans_to_even(const std::vector<Term>& terms) {
+    return std::any_of(terms.begin(), terms.end(), [](const Term& t) { return t.may_lean_to_even; });
+}
+
 /// Numbers of which nothing says how finely the firmware stores their coefficients. Taken as they are designed, they
 /// are multiples of a fraction all the same: 1/4 for a mean of four, practically none for most filters.
 RoundedNumbers designed_numbers(const std::vector<Term>& terms, int target_bits) {
@@ -19,7 +23,7 @@ RoundedNumbers designed_numbers(const std::vector<Term>& terms, int target_bits)
         const int of_word = t.word.fraction_bits - t.spare_bits;
         most = std::max(most, fraction_bits_of(t.coefficient) + of_word - target_bits);
     }
-    return {unlimited, -unlimited, unlimited, std::ldexp(1.0, std::min(most, 1000))};
+    return {unlimited, -unlimited, unlimited, std::ldexp(1.0, std::min(most, 1000)), any_leans_to_even(terms)};
 }
 
 int trailing_zeros(std::int64_t stored) { return std::countr_zero(static_cast<std::uint64_t>(stored)); }
@@ -51,10 +55,11 @@ RoundingPoint SumPoints::point_at(const SumTarget& target) const {
     return point;
 }
 
-void SumPoints::add_shortening(const SumTarget& target, const RoundedNumbers& numbers) {
+void SumPoints::add_shortening(const SumTarget& target, RoundedNumbers numbers) {
     // What is not known may drop anything, even where the words as they are described drop nothing.
     if (stage_.rounding_is_said && numbers.parts <= 1.0) return;
     RoundingPoint point = point_at(target);
+    numbers.carries = target.saves_fraction;
     point.parts = stage_.rounding_is_said ? numbers.parts : unlimited;
     point.error = rounding_error(rounding_of(target), numbers).times(point.step);
     point.variance_each = point.error.variance;
@@ -89,7 +94,7 @@ void SumPoints::add_sum(std::vector<Term> terms, const SumTarget& target) {
         return;
     }
     RoundedNumbers numbers = numbers_of(terms, accumulator, target.fraction_bits);
-    if (target.saves_fraction) numbers = {numbers.parts, -unlimited, unlimited, numbers.usual_parts};
+    if (target.saves_fraction) numbers.lowest = -unlimited, numbers.highest = unlimited;
     add_shortening(target, numbers);
 }
 
@@ -148,7 +153,8 @@ RoundedNumbers SumPoints::numbers_of(const std::vector<Term>& terms, int accumul
         if (gained < 0) low -= power_of_two(target_bits - accumulator), high += power_of_two(target_bits - accumulator);
     }
     const int dropped = accumulator - target_bits;
-    return {power_of_two(std::max(0, dropped - common)), low, high, power_of_two(std::max(0, dropped - usual))};
+    return {power_of_two(std::max(0, dropped - common)), low, high, power_of_two(std::max(0, dropped - usual)),
+            any_leans_to_even(terms)};
 }
 
 }  // namespace halflsb

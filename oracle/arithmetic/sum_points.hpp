@@ -17,7 +17,8 @@ struct Term {
     int spare_bits = 0;        ///< of its fraction that are always 0
     /// What comes in; a state on its way to the output, of transposed-2; what the section returned before.
     enum class Of { input, state, feedback } of = Of::input;
-    bool is_subtracted = false;  ///< after it was shortened, if it was
+    bool may_lean_to_even = false;  ///< the words, after a rounding half to even
+    bool is_subtracted = false;     ///< after it was shortened, if it was
 };
 
 /// Where a sum goes: which words, which rounding, which way to the output.
@@ -41,7 +42,7 @@ public:
 
     void add_sum(std::vector<Term> terms, const SumTarget& target);
     /// Numbers of so many parts, shortened.
-    void add_shortening(const SumTarget& target, const RoundedNumbers& numbers);
+    void add_shortening(const SumTarget& target, RoundedNumbers numbers);
     /// A product that is shortened by itself and then added (sign 1) or subtracted (-1).
     void add_product(const Term& product, const SumTarget& target, double sign);
     /// Named and placed, without an error.
