@@ -87,6 +87,8 @@ const std::vector<FaultEntry> entries = {
      pass_by<PassageFault::noise_added>},
     {"drift", "", "", "the output rises by a code each 1000 samples", Shows::whole_numbers,
      pass_by<PassageFault::output_drifts>},
+    {"slow-sample", "", "", "each 1000th sample takes 2 ms longer; the codes are right", Shows::steady_rate,
+     pass_by<PassageFault::slow_sample>},
     {"flip-byte", "", "N", "each Nth byte toward the host has a bit flipped", Shows::line,
      [](F faults, N n, Ms) { faults.line.flip_every = n; }},
     {"drop-byte", "", "N", "each Nth byte toward the host is lost", Shows::line,

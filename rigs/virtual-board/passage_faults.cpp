@@ -2,6 +2,7 @@
 
 #include <algorithm>
 #include <array>
+#include <chrono>
 #include <functional>
 #include <utility>
 
@@ -120,6 +121,29 @@ private:
     std::int32_t held_ = 0;  // set by the samples before the first event
 };
 
+/// Something else gets the processor: the answer is right, and late.
+class SlowSample : public Around {
+public:
+    using Around::Around;
+    void reset() override {
+        Around::reset();
+        count_ = 0;
+    }
+    std::int32_t step(std::int32_t x) override {
+        if (++count_ == event_period_samples) {
+            count_ = 0;
+            using Clock = std::chrono::steady_clock;
+            constexpr auto taken = std::chrono::milliseconds(2);
+            // Busy, as an interrupt is: a sleep would take as long as the host's scheduler likes.
+            for (const auto begun = Clock::now(); Clock::now() - begun < taken;) continue;
+        }
+        return Around::step(x);
+    }
+
+private:
+    std::uint32_t count_ = 0;
+};
+
 /// Changes an output that is a whole number, within the ends of its word.
 class AtOutput : public Around {
 public:
@@ -224,6 +248,8 @@ std::unique_ptr<CodeFilter> with_fault(PassageFault fault, Format format, std::u
             return std::make_unique<NoiseAdded>(std::move(filter), format);
         case PassageFault::output_drifts:
             return std::make_unique<OutputDrifts>(std::move(filter), format);
+        case PassageFault::slow_sample:
+            return std::make_unique<SlowSample>(std::move(filter));
     }
     return filter;
 }

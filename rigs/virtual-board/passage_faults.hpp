@@ -22,6 +22,7 @@ enum class PassageFault {
     output_held,             ///< while it moves by less than 4 codes a sample
     noise_added,             ///< at the output, uniform over -8 .. 8 codes
     output_drifts,           ///< by a code each 1000 samples
+    slow_sample,             ///< each 1000th takes 2 ms more; every code is right
 };
 
 /// `format` decides what zero is, where the codes end, and what a swapped or an inverted sample.

@@ -226,6 +226,21 @@ class FilterFaults(unittest.TestCase):
                 answers = board.host.stream([x for instant in instants for x in instant])
                 self.assertEqual(answers[-2:], [16000, heard] if driven == 0 else [heard, 16000])
 
+    def test_a_slow_sample_shows_in_the_ticks_alone(self):
+        codes = noise(4000)
+        with VirtualBoard(PROGRAM, "--fault", "slow-sample") as board:
+            board.host.start(board.host.filter_named("load-cell"), BLOCK)
+            answers = board.host.stream(codes)
+        self.assertEqual(answers, models.response(models.model("load-cell"), [codes], BLOCK))
+        # Ticks are nanoseconds of a host at work: any block may be late besides, so only the slow ones are asked of.
+        for slow in (999, 1999, 2999, 3999):
+            total, largest = board.host.ticks[slow // BLOCK]
+            self.assertGreaterEqual(total, 2_000_000)
+            samples = min(BLOCK, len(codes) - slow // BLOCK * BLOCK)
+            self.assertEqual(largest, -(-total // samples))
+        # 59 of 63 blocks hold no slow sample, and half of those are not all disturbed.
+        self.assertLess(sorted(total for total, _ in board.host.ticks)[len(board.host.ticks) // 2], 2_000_000)
+
     def test_two_faults_act_together(self):
         codes = noise(400)
         with VirtualBoard(PROGRAM, "--fault", "S01", "--fault", "A01") as board:
