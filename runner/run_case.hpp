@@ -3,6 +3,7 @@
 
 #include <string>
 
+#include "oracle/judge/base_response.hpp"
 #include "oracle/judge/plan.hpp"
 #include "oracle/judge/plots.hpp"
 #include "runner/board_settings.hpp"
@@ -27,11 +28,9 @@ struct CaseStage {
     Recorder* sent;  ///< keeps the stimulus; nullptr where its recipe is enough
     const Clock& clock;
     RunObserver& observer;
+    BaseResponse base = {};      ///< of a companion
     CasePlots* plots = nullptr;  ///< receives what a person wants to see of it; nullptr: nothing is wanted
 };
-
-/// Zeros of a flush and the stimulus: the instants that travel.
-std::int64_t sent_samples(const Case& the_case);
 
 /// Fills everything but names of files, their hashes and earlier attempts. A bench error makes the case invalid,
 /// with the reason, and is no Error here. Errors: interrupted (nothing is recorded), output (disk full).

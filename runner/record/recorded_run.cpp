@@ -65,6 +65,19 @@ T read_choice(const JsonField& field, const T (&choices)[count]) {
     return choices[0];
 }
 
+std::optional<Companion> read_companion(const JsonField& field) {
+    if (field.is_null()) return std::nullopt;
+    constexpr std::int64_t most = std::numeric_limits<std::int32_t>::max();
+    Companion companion;
+    companion.base = field.at("base").text();
+    field.at("terms").each([&](const JsonField& term) {
+        companion.terms.push_back({term.at("gain").whole(-most, most), term.at("delay_samples").whole(0, most)});
+    });
+    const JsonField block = field.at("block_samples");
+    if (!block.is_null()) companion.block_samples = block.whole(1, most);
+    return companion;
+}
+
 CaseResult read_case(const JsonField& field) {
     CaseResult result;
     result.number = static_cast<std::size_t>(field.at("number").whole(1, most_cases));
@@ -77,6 +90,8 @@ CaseResult read_case(const JsonField& field) {
     result.rate_hz = field.at("rate_hz").number_or_none();
     result.start = read_choice(field.at("start"), {Start::reset, Start::flush, Start::running});
     result.start_samples = field.at("start_samples").whole(0, most_samples);
+    // Runs that were recorded before there were companions have none.
+    result.companion = read_companion(field.at_or_null("companion"));
     field.at("settings").each_member([&](const std::string& name, const JsonField& value) {
         using Limits = std::numeric_limits<std::int32_t>;
         result.settings.push_back({name, static_cast<std::int32_t>(value.whole(Limits::min(), Limits::max())), {}});

@@ -88,6 +88,8 @@ struct CaseResult {
     std::string rerun;                    ///< the command that repeats this case alone
     std::optional<double> rate_hz;        ///< of the case, where it is not the signal's
     double returned_per_sent = 1.0;       ///< rate of the response over that of the stimulus
+    /// It was held against another case's capture; read from a record without its texts for people.
+    std::optional<Companion> companion = {};
 };
 
 /// A case of the plan, and what it is there to find.
@@ -118,7 +120,7 @@ struct RunResult {
     BoardFacts board;
     FirmwareCheck firmware;
     TakenByItself taken;
-    bool may_end_early = false;  ///< some case may end before its stimulus does, once its rules are decided
+    bool may_end_early = false;              ///< some case may end before its stimulus does, once its rules are decided
     std::vector<std::string> cases_planned;  ///< names of the selected cases, in order
     std::vector<CaseResult> cases;           ///< those that ran
     std::vector<std::string> warnings;
