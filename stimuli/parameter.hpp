@@ -27,6 +27,7 @@ enum class ParameterType {
     integers,     ///< an array of whole numbers, not empty; handed on as `reals`
     signal_file,  ///< a path of a CSV or NPY file under the plan's root; handed on as a SignalFile
     stimuli,      ///< an array of tables, each a stimulus with its shape
+    mask_file,    ///< a path of a CSV file; a SignalFile of from_hz, to_hz, min_db or -inf, max_db or +inf
 };
 
 inline constexpr double no_limit = std::numeric_limits<double>::infinity();

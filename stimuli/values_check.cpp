@@ -30,6 +30,7 @@ std::string_view type_text(ParameterType type) {
         case ParameterType::integers:
             return "a list of numbers";
         case ParameterType::signal_file:
+        case ParameterType::mask_file:
             return "the samples of a file";
         case ParameterType::stimuli:
             return "a list of stimuli";
@@ -57,6 +58,7 @@ bool type_fits(ParameterType type, const ParameterValue& value) {
         case ParameterType::choice:
             return std::holds_alternative<std::string>(value);
         case ParameterType::signal_file:
+        case ParameterType::mask_file:
             return holds_object<SignalFile>(value);
         case ParameterType::stimuli:
             return holds_object<std::vector<StimulusWords>>(value);

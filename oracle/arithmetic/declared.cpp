@@ -19,7 +19,13 @@ public:
     DeclaredFilter(const DescribedChain& chain, double gain) : gain_(gain) {
         const ExactChain exact = exact_chain(chain);
         for (const ChainElement& element : chain_elements(chain, exact)) elements_.emplace_back(element);
-        if (chain.stages.back().out.is_float) largest_ = static_cast<double>(std::numeric_limits<float>::max());
+        if (chain.stages.back().out.is_float) {
+            highest_ = static_cast<double>(std::numeric_limits<float>::max());
+            lowest_ = -highest_;
+        } else if (chain.output_ends) {
+            lowest_ = chain.output_ends->lowest;
+            highest_ = chain.output_ends->highest;
+        }
     }
 
     std::size_t outputs_for(std::size_t inputs) const override {
@@ -50,12 +56,13 @@ private:
         }
         for (std::size_t n = 0; n < out.size(); ++n) {
             // NaN compares false with both ends and stays.
-            out[n] = std::clamp(from_[n] * gain_, -largest_, largest_);
+            out[n] = std::clamp(from_[n] * gain_, lowest_, highest_);
         }
     }
 
     std::vector<ElementFilter> elements_;
-    double gain_, largest_ = std::numeric_limits<double>::infinity();
+    double gain_;
+    double lowest_ = -std::numeric_limits<double>::infinity(), highest_ = std::numeric_limits<double>::infinity();
     std::vector<double> from_, to_, sums_, held_;
 };
 

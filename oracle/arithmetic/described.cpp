@@ -212,7 +212,14 @@ DescribedOrProblem describe(const FilterChain& given, const SampleFormat& input,
         Port out;
         if (is_last) {
             out = port_of(output, chain[i].arithmetic.output_overflow);
-            out.word.fraction_bits += gain_bits.value_or(0);
+            if (gain_bits) {
+                out.word.fraction_bits += *gain_bits;
+            } else if (!out.is_float) {
+                // A step that is no coarser than one of the output.
+                out.word.fraction_bits += std::ilogb(output_per_input) + 1;
+                out.word.bits = wide_bits;
+                described.output_ends = {lowest_value(output), highest_value(output)};
+            }
         } else {
             out = port_between(chain[i], in, words_are_said);
         }

@@ -83,6 +83,12 @@ struct DescribedChain {
     std::vector<DescribedStage> stages;
     /// Why no twin can be made of it (rounding not said, words between stages not said); none: it can.
     std::optional<ArithmeticProblem> missing;
+    /// Where output_per_input is no power of two the last words have no binary point in values of the input and are as
+    /// wide as it takes; what is held is the value of the output, within these.
+    struct Ends {
+        double lowest, highest;
+    };
+    std::optional<Ends> output_ends = {};
 };
 
 /// `chain` is that of one channel. Refuses contradictory arithmetic, coefficients outside their word, an accumulator

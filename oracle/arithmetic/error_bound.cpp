@@ -13,7 +13,7 @@ namespace halflsb {
 
 namespace {
 
-constexpr double bits_above = 64.0;    // 6 bits: the noise must spread over that many of the steps kept
+constexpr double bits_above = 64.0;    // 6 bits: the noise must spread over that many of the steps kept, or had
 constexpr double one_sign = 1e-9;      // of sum |h|: a path with less of the other sign has but one
 constexpr std::size_t most_lags = 64;  // of products whose errors go together; beyond them |r[l]| <= r[0]
 
@@ -34,6 +34,9 @@ double product(double factor, double amount) { return factor == 0.0 || amount ==
 struct KnownPoint {
     RoundingPoint point;
     PathSums sums;
+    /// The step kept, or the coarsest of the words on the way to it: a few codes of a coarse word, brought into a finer
+    /// one, leave a few remainders and not all.
+    double coarsest_step = 0.0;
     /// Of the number that is shortened, for white noise of rms 1 at the input; looked up once it is asked for.
     std::optional<double> level_per_rms;
 
@@ -64,7 +67,7 @@ public:
         const bool has_both_signs = std::min(sums.positive, -sums.negative) > one_sign * sums.l1();
         clips_one_way_ = clips_one_way_ && !has_both_signs;
         term.is_statistical =
-            use_.noise_like && sums.is_one_response && known.level(use_.input_rms) >= bits_above * point.step;
+            use_.noise_like && sums.is_one_response && known.level(use_.input_rms) >= bits_above * known.coarsest_step;
         if (term.is_statistical) {
             add_noise(point, sums, term);
         } else {
@@ -209,7 +212,10 @@ private:
         Known known{samples, has_past, largest_input, reference_error(chain_, exact_, largest_input), {}};
         const auto add = [&](const RoundingPoint& point) {
             const auto lags = std::min(most_lags, static_cast<std::size_t>(point.count));
-            known.points.push_back({point, path_sums(path_of(point, exact_.stages), samples, lags, has_past), {}});
+            known.points.push_back({point,
+                                    path_sums(path_of(point, exact_.stages), samples, lags, has_past),
+                                    std::max(point.step, coarsest_word_before(point.stage)),
+                                    {}});
         };
         for (const RoundingPoint& point : points_) add(point);
         // What ran before the record, nobody knows for how long, adds to what a running sum has lost.
@@ -220,6 +226,15 @@ private:
         }
         known_.push_back(std::move(known));
         return known_.back();
+    }
+
+    double coarsest_word_before(std::size_t stage) const {
+        double coarsest = 0.0;
+        for (std::size_t i = 0; i <= stage; ++i) {
+            const Port& in = chain_.stages[i].in;
+            if (!in.is_float) coarsest = std::max(coarsest, step_of(in.word));
+        }
+        return coarsest;
     }
 
     static constexpr std::size_t most_known = 64;

@@ -16,6 +16,7 @@ double quantile(double probability, double degrees) {
 }  // namespace
 
 bool is_uncertain(const Rule& rule) {
+    if (const auto* latency = std::get_if<LatencyRule>(&rule.kind)) return latency->max_fraction_samples.has_value();
     return std::visit([](const auto& kind) { return !kind.is_exact; }, rule.kind);
 }
 

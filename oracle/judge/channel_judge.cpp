@@ -93,11 +93,14 @@ ChannelJudge::Latency ChannelJudge::latency_found() const {
     // One NaN or infinity makes every lag equally bad: none of them is right.
     if (!std::isfinite(lags_->residual_at(measured))) return Latency::not_finite;
     if (measured == expected_lag_) return Latency::as_expected;
+    // Codes that wrap or clip can fit another lag better by squares; equal to the bit they fit where they are.
+    if (pass_.passes<ExactRule>(nullptr)) return Latency::as_expected;
     const bool is_clear = lags_->residual_at(measured) * 100.0 <= lags_->residual_at(expected_lag_);
-    const bool meets_limits = second_->pass.passes<ErrorRule>(second_->reference.rails());
-    if (is_clear || meets_limits) return Latency::other;
-    // Codes that wrap can fit another lag better by squares; equal to the bit they fit where they are.
-    return pass_.passes<ExactRule>(nullptr) ? Latency::as_expected : Latency::fits_nowhere;
+    // A derived limit that says nothing of some samples is met by much: that is no evidence of a lag.
+    const RailWatch* const rails = second_->reference.rails();
+    const bool holds_throughout = rails == nullptr || !rails->first_unsafe_index();
+    const bool meets_limits = holds_throughout && second_->pass.passes<ErrorRule>(rails);
+    return is_clear || meets_limits ? Latency::other : Latency::fits_nowhere;
 }
 
 std::optional<RuleVerdict> ChannelJudge::latency_verdict(const Rule& rule) const {
@@ -131,7 +134,18 @@ std::optional<RuleVerdict> ChannelJudge::latency_verdict(const Rule& rule) const
             break;
     }
     verdict.figures.push_back(std::move(figure));
+    add_fraction(rule, verdict);
     return verdict;
+}
+
+void ChannelJudge::add_fraction(const Rule& rule, RuleVerdict& verdict) const {
+    const Latency found = latency_found();
+    if (found == Latency::not_told || found == Latency::not_finite) return;
+    auto fraction = (found == Latency::other ? second_->pass : pass_).verdict(rule, nullptr);
+    if (!fraction) return;
+    for (JudgedFigure& figure : fraction->figures) verdict.figures.push_back(std::move(figure));
+    verdict.verdict = std::max(verdict.verdict, fraction->verdict);
+    if (!fraction->reason.empty()) verdict.reason += (verdict.reason.empty() ? "" : "; ") + fraction->reason;
 }
 
 void ChannelJudge::plot(CasePlots& plots) const {

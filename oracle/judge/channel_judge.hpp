@@ -52,6 +52,8 @@ private:
     enum class Latency { not_told, not_finite, as_expected, other, fits_nowhere };
     Latency latency_found() const;
     std::optional<RuleVerdict> latency_verdict(const Rule& rule) const;
+    /// What the latency is beside whole samples, where that was measured, at the lag that the rules are judged at.
+    void add_fraction(const Rule& rule, RuleVerdict& verdict) const;
 
     JudgedChannel judged_;
     const Rule* latency_rule_;

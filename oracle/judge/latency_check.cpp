@@ -29,11 +29,29 @@ bool noise_can_tell(const Plan& plan, const Case& the_case) {
     return latency_evidence(plan, trial).can_tell;
 }
 
+/// Eight segments of the shortest kind, overlapped, and their spread.
+constexpr std::int64_t fewest_for_fraction = 1024;
+
 }  // namespace
+
+bool tells_fraction(const Plan& plan, const Case& the_case) {
+    // A chirp passes each frequency once: nothing says how sure it is.
+    return the_case.shape != "chirp" && !the_case.stimulus->spectrum().bands.empty() &&
+           judged_samples(plan, the_case) >= fewest_for_fraction;
+}
 
 void check(const LatencyRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
            std::vector<Refusal>& refusals) {
     if (rule.implicit) return;
+    if (rule.max_fraction_samples && !tells_fraction(plan, the_case)) {
+        refusals.push_back({asked.position,
+                            "case \"" + the_case.name + "\" cannot tell a fraction of its latency with " +
+                                std::to_string(judged_samples(plan, the_case)) + " samples of shape = \"" +
+                                the_case.shape + "\"",
+                            "give it noise or a prbs that returns at least " + std::to_string(fewest_for_fraction) +
+                                " samples, or write the limit in another case"});
+        return;
+    }
     const LatencyEvidence evidence = latency_evidence(plan, the_case);
     if (evidence.can_tell) return;
     Refusal refusal{asked.position, {}, {}};

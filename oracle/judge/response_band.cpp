@@ -36,11 +36,69 @@ struct BandDecision::Gain {
     }
 };
 
+BandDecision::BandDecision(const ResponseRule& rule, std::string name, std::vector<BandPoint> points,
+                           const std::vector<MaskLimits>& limits)
+    : name_(std::move(name)),
+      zone_db_(rule.delta_db),
+      relative_to_design_(rule.relative_to_design),
+      points_(std::move(points)) {
+    Side least{{}, true, {}}, most{{}, false, {}};
+    for (const MaskLimits& at : limits) {
+        least.limits_db.push_back(at.min_db);
+        most.limits_db.push_back(at.max_db);
+    }
+    for (Side* side : {&least, &most}) {
+        bool has_some = false;
+        for (const double limit : side->limits_db) {
+            side->verdicts.push_back(std::isfinite(limit) ? Verdict::undecided : Verdict::pass);
+            has_some = has_some || std::isfinite(limit);
+        }
+        if (has_some) sides_.push_back(std::move(*side));
+    }
+}
+
 BandDecision::BandDecision(const ResponseRule& rule, const ResponseBand& band, std::vector<BandPoint> points)
-    : band_(band), zone_db_(rule.delta_db), relative_to_design_(rule.relative_to_design), points_(std::move(points)) {
-    const std::vector<Verdict> open(points_.size(), Verdict::undecided);
-    if (band.min_db) sides_.push_back({*band.min_db, true, open});
-    if (band.max_db) sides_.push_back({*band.max_db, false, open});
+    : BandDecision(
+          rule, "from " + hz_text(band.from_hz) + " to " + hz_text(band.to_hz), points,
+          std::vector<MaskLimits>(points.size(), {band.min_db.value_or(-HUGE_VAL), band.max_db.value_or(HUGE_VAL)})) {
+    band_ = band;
+}
+
+namespace {
+
+std::vector<BandPoint> limited(const ResponseMask& mask, const std::vector<BandPoint>& points) {
+    std::vector<BandPoint> kept;
+    for (const BandPoint& point : points) {
+        const MaskLimits limits = mask.limits_at(point.hz);
+        if (std::isfinite(limits.min_db) || std::isfinite(limits.max_db)) kept.push_back(point);
+    }
+    return kept;
+}
+
+std::vector<MaskLimits> limits_of(const ResponseMask& mask, const std::vector<BandPoint>& points) {
+    std::vector<MaskLimits> limits;
+    for (const BandPoint& point : points) limits.push_back(mask.limits_at(point.hz));
+    return limits;
+}
+
+}  // namespace
+
+BandDecision::BandDecision(const ResponseRule& rule, const ResponseMask& mask, std::vector<BandPoint> points)
+    : BandDecision(rule, "in the mask " + mask.name, limited(mask, points), limits_of(mask, limited(mask, points))) {}
+
+std::size_t BandDecision::decisions() const {
+    std::size_t count = 0;
+    for (const Side& side : sides_) {
+        count += static_cast<std::size_t>(std::count_if(side.limits_db.begin(), side.limits_db.end(),
+                                                        [](double limit) { return std::isfinite(limit); }));
+    }
+    return count;
+}
+
+MaskLimits BandDecision::limits_at(std::size_t point) const {
+    MaskLimits limits{-HUGE_VAL, HUGE_VAL};
+    for (const Side& side : sides_) (side.at_least ? limits.min_db : limits.max_db) = side.limits_db[point];
+    return limits;
 }
 
 BandDecision::Gain BandDecision::gain_at(const ResponseSums& sums, const BandPoint& point) const {
@@ -61,16 +119,16 @@ void BandDecision::look(const ResponseSums& sums, const ErrorShares& shares) {
         for (Side& side : sides_) {
             if (!is_open(side)) continue;
             // Rounded before it is compared, as all that is judged. What is not a number decides nothing.
-            const double limit = judged(side.limit_db);
+            const double limit = judged(side.limits_db[i]);
             if (side.at_least) {
                 if (judged(gain.surely_below_db(shares.alpha)) < limit)
                     side.verdicts[i] = Verdict::fail;
-                else if (judged(gain.surely_above_db(shares.beta)) >= judged(side.limit_db - zone_db_))
+                else if (judged(gain.surely_above_db(shares.beta)) >= judged(side.limits_db[i] - zone_db_))
                     side.verdicts[i] = Verdict::pass;
             } else {
                 if (judged(gain.surely_above_db(shares.alpha)) > limit)
                     side.verdicts[i] = Verdict::fail;
-                else if (judged(gain.surely_below_db(shares.beta)) <= judged(side.limit_db + zone_db_))
+                else if (judged(gain.surely_below_db(shares.beta)) <= judged(side.limits_db[i] + zone_db_))
                     side.verdicts[i] = Verdict::pass;
             }
         }
@@ -85,20 +143,22 @@ Verdict BandDecision::verdict() const {
     return worst;
 }
 
-double BandDecision::room_of(const Side& side, const Gain& gain) {
-    const double value = judged(gain.value_db()), limit = judged(side.limit_db);
+double BandDecision::room_of(const Side& side, std::size_t point, const Gain& gain) {
+    const double value = judged(gain.value_db()), limit = judged(side.limits_db[point]);
     return side.at_least ? value - limit : limit - value;
 }
 
 std::size_t BandDecision::decisive(const Side& side, const std::vector<Gain>& gains) const {
-    std::size_t shown = 0;
+    std::size_t shown = points_.size();
     double shown_room = 0.0;
     for (std::size_t i = 0; i < points_.size(); ++i) {
-        const double room = room_of(side, gains[i]);
+        if (!std::isfinite(side.limits_db[i])) continue;
+        const double room = room_of(side, i, gains[i]);
         // A NaN has no room at all, and must not hide behind a comparison that is false.
         const bool tighter = !(room >= shown_room) && !std::isnan(shown_room);
-        const Verdict verdict = side.verdicts[i], before = side.verdicts[shown];
-        if (i > 0 && !(verdict > before || (verdict == before && tighter))) continue;
+        const Verdict verdict = side.verdicts[i];
+        const Verdict before = shown < points_.size() ? side.verdicts[shown] : verdict;
+        if (shown < points_.size() && !(verdict > before || (verdict == before && tighter))) continue;
         shown = i;
         shown_room = room;
     }
@@ -107,10 +167,9 @@ std::size_t BandDecision::decisive(const Side& side, const std::vector<Gain>& ga
 
 JudgedFigure BandDecision::figure_of(const Side& side, const std::vector<Gain>& gains) const {
     const std::size_t shown = decisive(side, gains);
-    const double limit = judged(side.limit_db);
+    const double limit = judged(side.limits_db[shown]);
     JudgedFigure figure;
-    figure.name = std::string(side.at_least ? "lowest" : "highest") + " gain from " + hz_text(band_.from_hz) + " to " +
-                  hz_text(band_.to_hz);
+    figure.name = std::string(side.at_least ? "lowest" : "highest") + " gain " + name_;
     figure.limit = limit;
     figure.unit = "dB";
     figure.at_least = side.at_least;
@@ -119,7 +178,7 @@ JudgedFigure BandDecision::figure_of(const Side& side, const std::vector<Gain>& 
     const double value = judged(gains[shown].value_db());
     if (std::isfinite(value)) {
         figure.value = value;
-        figure.margin = judged(room_of(side, gains[shown]));
+        figure.margin = judged(room_of(side, shown, gains[shown]));
         const double uncertainty = judged(gains[shown].uncertainty_db());
         if (std::isfinite(uncertainty)) figure.uncertainty = uncertainty;
         if (figure.verdict == Verdict::pass && *figure.margin < 0.0) figure.note += ", in the zone";
@@ -146,21 +205,21 @@ std::vector<std::pair<double, Verdict>> BandDecision::decisive_points(const Resp
     return points;
 }
 
-double BandDecision::samples_to_tell(const Side& side, const Gain& gain, double samples,
+double BandDecision::samples_to_tell(const Side& side, std::size_t point, const Gain& gain, double samples,
                                      const ErrorShares& shares) const {
     const double deviation = std::sqrt(gain.difference.variance);
-    if (!std::isfinite(deviation)) return 0.0;
+    if (!std::isfinite(deviation) || !std::isfinite(side.limits_db[point])) return 0.0;
     // From the limit to the end of the zone, as a factor.
-    const double limit = ratio_of(side.limit_db) * gain.scale;
+    const double limit = ratio_of(side.limits_db[point]) * gain.scale;
     const double delta = limit * std::fabs(ratio_of(side.at_least ? -zone_db_ : zone_db_) - 1.0);
     return halflsb::fixed_length_samples(shares.alpha, shares.beta, delta, deviation, samples);
 }
 
 double BandDecision::fixed_length_samples(const ResponseSums& sums, double samples, const ErrorShares& shares) const {
     double most = 0.0;
-    for (const BandPoint& point : points_) {
-        const Gain gain = gain_at(sums, point);
-        for (const Side& side : sides_) most = std::max(most, samples_to_tell(side, gain, samples, shares));
+    for (std::size_t i = 0; i < points_.size(); ++i) {
+        const Gain gain = gain_at(sums, points_[i]);
+        for (const Side& side : sides_) most = std::max(most, samples_to_tell(side, i, gain, samples, shares));
     }
     return most;
 }
@@ -173,7 +232,7 @@ BandDecision::Open BandDecision::open(const ResponseSums& sums, double samples, 
             if (side.verdicts[i] != Verdict::undecided) continue;
             ++open.gains;
             open.is_not_a_number = open.is_not_a_number || std::isnan(gain.value_db());
-            open.samples_needed = std::max(open.samples_needed, samples_to_tell(side, gain, samples, shares));
+            open.samples_needed = std::max(open.samples_needed, samples_to_tell(side, i, gain, samples, shares));
         }
     }
     return open;

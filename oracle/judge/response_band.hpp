@@ -1,4 +1,4 @@
-// One band of a response rule: each of its points is decided by itself, look by look.
+// One band or the mask of a response rule: each of its points is decided by itself, look by look.
 //
 // A point that was decided stays decided: the looks share alpha and beta (repeated_looks.hpp), so what each says holds
 // whenever it was said.
@@ -6,6 +6,8 @@
 
 #include <complex>
 #include <cstddef>
+#include <optional>
+#include <string>
 #include <utility>
 #include <vector>
 
@@ -25,9 +27,11 @@ struct BandPoint {
 class BandDecision {
 public:
     BandDecision(const ResponseRule& rule, const ResponseBand& band, std::vector<BandPoint> points);
+    /// Points that the mask does not limit are left out.
+    BandDecision(const ResponseRule& rule, const ResponseMask& mask, std::vector<BandPoint> points);
 
     /// Each point and side that is held against a limit: what shares alpha.
-    std::size_t decisions() const { return points_.size() * sides_.size(); }
+    std::size_t decisions() const;
     /// What has come so far. `shares` are those of one point, one side and one look.
     void look(const ResponseSums& sums, const ErrorShares& shares);
     /// Fails with one point, passes with all of them.
@@ -37,7 +41,12 @@ public:
     std::vector<JudgedFigure> figures(const ResponseSums& sums) const;
     /// Of the same points frequency and verdict.
     std::vector<std::pair<double, Verdict>> decisive_points(const ResponseSums& sums) const;
-    const ResponseBand& band() const { return band_; }
+    /// None of a mask.
+    const std::optional<ResponseBand>& band() const { return band_; }
+    /// Those that are held, ascending.
+    const std::vector<BandPoint>& points() const { return points_; }
+    /// What is asked of one of them.
+    MaskLimits limits_at(std::size_t point) const;
     /// What is undecided yet.
     struct Open {
         std::size_t gains = 0;  ///< points and sides
@@ -51,20 +60,24 @@ public:
 
 private:
     struct Side {
-        double limit_db;
+        std::vector<double> limits_db;  ///< one a point; infinite: none
         bool at_least;
         std::vector<Verdict> verdicts;  ///< one a point
     };
     struct Gain;
+    BandDecision(const ResponseRule& rule, std::string name, std::vector<BandPoint> points,
+                 const std::vector<MaskLimits>& limits);
     Gain gain_at(const ResponseSums& sums, const BandPoint& point) const;
-    double samples_to_tell(const Side& side, const Gain& gain, double samples, const ErrorShares& shares) const;
+    double samples_to_tell(const Side& side, std::size_t point, const Gain& gain, double samples,
+                           const ErrorShares& shares) const;
     std::vector<Gain> gains(const ResponseSums& sums) const;
-    static double room_of(const Side& side, const Gain& gain);
+    static double room_of(const Side& side, std::size_t point, const Gain& gain);
     /// Index of the point that decides the side.
     std::size_t decisive(const Side& side, const std::vector<Gain>& gains) const;
     JudgedFigure figure_of(const Side& side, const std::vector<Gain>& gains) const;
 
-    ResponseBand band_;
+    std::optional<ResponseBand> band_;
+    std::string name_;  ///< "from 10 Hz to 60 Hz"
     double zone_db_;
     bool relative_to_design_;
     std::vector<BandPoint> points_;

@@ -1,8 +1,11 @@
 #include <algorithm>
+#include <cmath>
 #include <string>
 
+#include "oracle/filters/filter.hpp"
 #include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/response_judge.hpp"
+#include "oracle/judge/response_phase.hpp"
 #include "oracle/judge/units.hpp"
 
 namespace halflsb {
@@ -74,6 +77,40 @@ bool tones_are_told(const Plan& plan, const Case& the_case, const Rule& asked, c
     return true;
 }
 
+/// A stimulus for a remedy: more frequencies, where its bins are too far apart.
+std::string closer_bins(const Plan& plan, const Case& the_case, const Spectrum& spectrum) {
+    if (!spectrum.tones.empty()) return ", or a multitone with tones in it";
+    const double spacing_hz =
+        returned_rate_hz(plan, the_case) / static_cast<double>(response_segment_for(judged_samples(plan, the_case)));
+    return "; its bins are " + brief(spacing_hz) + " Hz apart, a longer record brings them closer";
+}
+
+/// Points enough to hold the phase at.
+void check_phase(const PhaseLimits& limits, const Plan& plan, const Case& the_case, const Rule& asked,
+                 const Spectrum& spectrum, std::vector<Refusal>& refusals) {
+    if (!limits.any()) return;
+    // As the judge's: two tones make a step, and so do bins a main lobe of the window apart.
+    const std::size_t fewest = !limits.limits_delay() ? 1 : spectrum.tones.empty() ? 5 : 2;
+    const double sent_hz = rate_hz_of(plan, the_case);
+    const std::vector<double> answered = answerable_hz(ResponseBand{0.0, HUGE_VAL, {}, {}}, plan, the_case);
+    for (int channel = 1; channel <= plan.signal.channels; ++channel) {
+        if (!is_driven(the_case, channel)) continue;
+        const FilterChain chain = chain_of(plan, the_case, channel);
+        std::vector<BandPoint> points;
+        for (const double hz : answered) points.push_back({0, hz, response_at(chain, hz / sent_hz)});
+        const std::size_t found = phase_points(limits, points, returned_rate_hz(plan, the_case)).size();
+        if (found >= fewest) continue;
+        refusals.push_back({asked.position,
+                            "the stimulus of case \"" + the_case.name + "\" has " + std::to_string(found) +
+                                (found == 1 ? " frequency" : " frequencies") +
+                                " where the rule limits phase or group "
+                                "delay, and it takes " +
+                                std::to_string(fewest),
+                            "use noise or a chirp over that band" + closer_bins(plan, the_case, spectrum)});
+        return;
+    }
+}
+
 }  // namespace
 
 void check(const ResponseRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
@@ -112,9 +149,7 @@ void check(const ResponseRule& rule, const Rule& asked, const Plan& plan, const 
         const std::string band_text = brief(band.from_hz) + " to " + brief(band.to_hz) + " Hz";
         std::string remedy = noise;
         if (spectrum.tones.empty()) {
-            const double spacing_hz =
-                returned_rate_hz(plan, the_case) / static_cast<double>(response_segment_for(length));
-            remedy += "; its bins are " + brief(spacing_hz) + " Hz apart, a longer record brings them closer";
+            remedy += closer_bins(plan, the_case, spectrum);
         } else {
             remedy += ", or a multitone with a tone in it";
         }
@@ -122,6 +157,13 @@ void check(const ResponseRule& rule, const Rule& asked, const Plan& plan, const 
                             "the stimulus of case \"" + the_case.name + "\" says nothing about the band " + band_text,
                             remedy});
     }
+    if (rule.mask && answerable_hz(*rule.mask, plan, the_case).empty()) {
+        refusals.push_back(
+            {asked.position,
+             "the stimulus of case \"" + the_case.name + "\" says nothing about the mask " + rule.mask->name,
+             noise + closer_bins(plan, the_case, spectrum)});
+    }
+    check_phase(rule.phase, plan, the_case, asked, spectrum, refusals);
 }
 
 }  // namespace halflsb

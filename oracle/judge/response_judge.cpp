@@ -7,6 +7,7 @@
 #include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/clip_watch.hpp"
 #include "oracle/judge/response_band.hpp"
+#include "oracle/judge/response_phase.hpp"
 #include "oracle/judge/response_plot.hpp"
 #include "oracle/judge/rule_kinds.hpp"
 #include "oracle/judge/units.hpp"
@@ -84,6 +85,15 @@ std::vector<double> answerable_hz(const ResponseBand& band, const Plan& plan, co
     return found;
 }
 
+std::vector<double> answerable_hz(const ResponseMask& mask, const Plan& plan, const Case& the_case) {
+    std::vector<double> found = answerable_hz(ResponseBand{mask.from_hz(), mask.to_hz(), {}, {}}, plan, the_case);
+    std::erase_if(found, [&](double hz) {
+        const MaskLimits limits = mask.limits_at(hz);
+        return !std::isfinite(limits.min_db) && !std::isfinite(limits.max_db);
+    });
+    return found;
+}
+
 namespace {
 
 /// Of the points of the measure those in the band that the stimulus answers for.
@@ -134,6 +144,12 @@ public:
             bands_.emplace_back(rule, band, std::move(points));
             decisions += bands_.back().decisions();
         }
+        if (rule.mask) decisions += add_mask(*rule.mask, channel);
+        phase_ = PhaseDecisions(rule.phase, points_in({0.0, HUGE_VAL, {}, {}}, measure_->sums(), channel),
+                                measure_->sums(), channel);
+        decisions += phase_.decisions();
+        if (rule.phase.any() && phase_.decisions() == 0)
+            without_points_.push_back("the stimulus has too few frequencies where the phase is limited");
         shares_of_point_ = shares_of_rule(channel.plan).alpha_over(std::max<std::size_t>(decisions, 1));
         if (channel.wants_plots) plotted_ = points_in({0.0, HUGE_VAL, {}, {}}, measure_->sums(), channel);
     }
@@ -169,18 +185,37 @@ public:
 
     void plot(CasePlots& plots) const override {
         if (plotted_.empty()) return;
-        plots.push_back(response_plot(rule_, plotted_, bands_, measure_->sums(), confidence_));
+        plots.push_back(response_plot(rule_, plotted_, bands_, phase_, measure_->sums(), confidence_));
         plots.back().channel = shown_channel_;
     }
 
 private:
+    /// How many decisions it brings.
+    std::size_t add_mask(const ResponseMask& mask, const JudgedChannel& channel) {
+        BandDecision decision(rule_, mask, points_in({0.0, HUGE_VAL, {}, {}}, measure_->sums(), channel));
+        if (decision.points().empty()) {
+            without_points_.push_back("the stimulus has no power in the mask " + mask.name);
+            return 0;
+        }
+        const double highest_hz = returned_rate_hz(channel.plan, channel.the_case) / 2.0;
+        if (!mask.source.empty()) {
+            about_mask_ = mask.source;
+            if (mask.to_hz() > highest_hz) about_mask_ += "; what lies above " + hz_text(highest_hz) + " is left out";
+            about_mask_ += "; judged from " + hz_text(decision.points().front().hz) + " to " +
+                           hz_text(decision.points().back().hz) + "; " + mask.claim;
+        }
+        const std::size_t decisions = decision.decisions();
+        bands_.push_back(std::move(decision));
+        return decisions;
+    }
     void look() {
         for (BandDecision& band : bands_)
             band.look(measure_->sums(), shares_of_point_.over_looks(looks_.at_samples().size()));
+        phase_.look(measure_->sums(), shares_of_point_.over_looks(looks_.at_samples().size()));
         if (verdict_so_far() != Verdict::undecided) decided_after_ = samples_;
     }
     Verdict verdict_so_far() const {
-        Verdict worst = Verdict::pass;
+        Verdict worst = phase_.verdict();
         for (const BandDecision& band : bands_) worst = std::max(worst, band.verdict());
         return worst;
     }
@@ -197,7 +232,9 @@ private:
     std::int64_t samples_ = 0;
     std::optional<std::int64_t> decided_after_;  ///< samples
     ErrorShares shares_of_point_;
-    std::vector<BandDecision> bands_;
+    std::vector<BandDecision> bands_;  ///< the mask is the last of them
+    std::string about_mask_;           ///< that of a standard
+    PhaseDecisions phase_;
     std::vector<std::string> without_points_;
     std::vector<double> error_;
     std::vector<BandPoint> plotted_;  ///< all that the stimulus answers for; empty where no plot is wanted
@@ -213,6 +250,9 @@ RuleVerdict ResponseJudge::verdict(const RailWatch*) const {
         evidence.fixed_length_samples =
             std::max(evidence.fixed_length_samples, band.fixed_length_samples(sums, samples, shares_of_point_));
     }
+    for (JudgedFigure& figure : phase_.figures(sums)) verdict.figures.push_back(std::move(figure));
+    evidence.fixed_length_samples =
+        std::max(evidence.fixed_length_samples, phase_.fixed_length_samples(sums, samples, shares_of_point_));
     if (evidence.fixed_length_samples > 0.0) {
         evidence.fixed_length_samples =
             judged(std::max(std::ceil(evidence.fixed_length_samples),
@@ -228,10 +268,13 @@ RuleVerdict ResponseJudge::verdict(const RailWatch*) const {
     } else if (verdict.verdict == Verdict::undecided) {
         verdict.reason = why_undecided();
     }
+    if (!about_mask_.empty()) verdict.reason += (verdict.reason.empty() ? "" : "; ") + about_mask_;
     return verdict;
 }
 
 std::string ResponseJudge::why_undecided() const {
+    PhaseDecisions::Open of_phase = phase_.open(measure_->sums(), static_cast<double>(samples_), shares_of_point_);
+    if (of_phase.is_not_a_number) return "the response holds a value that is not a finite number";
     std::size_t open = 0;
     double needed = 0.0;
     for (const BandDecision& band : bands_) {
@@ -239,6 +282,13 @@ std::string ResponseJudge::why_undecided() const {
         if (of_band.is_not_a_number) return "the response holds a value that is not a finite number";
         open += of_band.gains;
         needed = std::max(needed, of_band.samples_needed);
+    }
+    if (open == 0) {
+        return std::to_string(of_phase.figures) + (of_phase.figures == 1 ? " phase or delay" : " phases and delays") +
+               " too near a limit to tell from " + std::to_string(samples_) + " samples" +
+               (of_phase.samples_needed > 0.0
+                    ? "; about " + brief(of_phase.samples_needed) + " would tell, or a wider delta_deg or delta_samples"
+                    : ": this stimulus has no spread that says how sure they are");
     }
     const std::string what = std::to_string(open) + (open == 1 ? " gain" : " gains") + " too near a limit to tell";
     if (!(needed > 0.0)) return what + ": this stimulus has no spread that says how sure they are";

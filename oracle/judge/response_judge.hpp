@@ -37,6 +37,8 @@ std::unique_ptr<ResponseMeasure> make_response_measure(const Plan& plan, const C
 /// Frequencies in Hz at which this case can answer for the band, edges included; empty when its stimulus
 /// has no power there or no bin falls into the band.
 std::vector<double> answerable_hz(const ResponseBand& band, const Plan& plan, const Case& the_case);
+/// Of those, where the mask limits the gain.
+std::vector<double> answerable_hz(const ResponseMask& mask, const Plan& plan, const Case& the_case);
 
 WantedReferences wanted_by(const ResponseRule& rule, bool is_driven);
 /// A band without a point is undecided.

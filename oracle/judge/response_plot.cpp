@@ -82,10 +82,74 @@ std::string note_of(const ResponseRule& rule, bool is_thinned, double confidence
     return note + " The latency is taken off the phase; it is not shown where the gain is not clear of its spread.";
 }
 
+/// Each piece with the widest limits in it.
+void add_mask(const BandDecision& band, std::vector<PlotLimit>& limits) {
+    constexpr std::size_t most_pieces = 128;
+    const std::vector<BandPoint>& points = band.points();
+    if (points.empty()) return;
+    const std::size_t step = (points.size() + most_pieces - 1) / most_pieces;
+    for (std::size_t begin = 0; begin < points.size(); begin += step) {
+        const std::size_t end = std::min(begin + step, points.size() - 1);
+        MaskLimits widest = band.limits_at(begin);
+        for (std::size_t i = begin; i < std::min(begin + step, points.size()); ++i) {
+            widest.min_db = std::min(widest.min_db, band.limits_at(i).min_db);
+            widest.max_db = std::max(widest.max_db, band.limits_at(i).max_db);
+        }
+        const auto told = [](double limit) { return std::isfinite(limit) ? std::optional(limit) : std::nullopt; };
+        limits.push_back({points[begin].hz, points[end].hz, told(widest.min_db), told(widest.max_db), band.verdict()});
+    }
+}
+
+/// Limits around the design are drawn around 0, and the phase off the design with them.
+void add_phase_limit(const PhaseDecisions& phases, PlotPanel& panel) {
+    const double limit = *phases.limits().max_phase_deg;
+    if (phases.limits().relative_to_design) {
+        panel.quantity = "phase, relative to the design";
+        PlotCurve &design = panel.curves[0], &measured = panel.curves[1];
+        for (std::size_t i = 0; i < design.values.size(); ++i) {
+            measured.values[i] -= design.values[i];
+            measured.low[i] -= design.values[i];
+            measured.high[i] -= design.values[i];
+            design.values[i] -= design.values[i];
+        }
+    }
+    panel.limits.push_back({phases.from_hz(), phases.to_hz(), -limit, limit, phases.phase_verdict()});
+}
+
+/// Its mean over each step stands at all frequencies of the step.
+PlotPanel delay_panel(const PhaseDecisions& phases, const ResponseSums& sums, const std::vector<double>& x,
+                      double confidence) {
+    const PhaseLimits& asked = phases.limits();
+    const std::vector<PhaseDecisions::Step> steps = phases.steps(sums, confidence);
+    using Role = PlotCurve::Role;
+    PlotCurve design{Role::reference, "design", {}, {}, {}}, measured{Role::response, "response", {}, {}, {}};
+    const auto finite = [](double value) { return std::isfinite(value) ? value : NAN; };
+    for (const double hz : x) {
+        const auto step = std::find_if(steps.begin(), steps.end(),
+                                       [&](const auto& each) { return hz >= each.from_hz && hz <= each.to_hz; });
+        const bool has = step != steps.end();
+        design.values.push_back(has ? step->design : NAN);
+        measured.values.push_back(has ? finite(step->value) : NAN);
+        measured.low.push_back(has ? finite(step->low) : NAN);
+        measured.high.push_back(has ? finite(step->high) : NAN);
+    }
+    PlotPanel panel{asked.relative_to_design ? "group delay, relative to the design" : "group delay",
+                    "samples",
+                    {std::move(design), std::move(measured)}};
+    for (const PhaseDecisions::Step& step : steps) {
+        const auto least = asked.relative_to_design && asked.max_group_delay_samples
+                               ? std::optional(-*asked.max_group_delay_samples)
+                               : asked.min_group_delay_samples;
+        panel.limits.push_back({step.from_hz, step.to_hz, least, asked.max_group_delay_samples, step.verdict});
+    }
+    return panel;
+}
+
 }  // namespace
 
 Plot response_plot(const ResponseRule& rule, const std::vector<BandPoint>& points,
-                   const std::vector<BandDecision>& bands, const ResponseSums& sums, double confidence) {
+                   const std::vector<BandDecision>& bands, const PhaseDecisions& phases, const ResponseSums& sums,
+                   double confidence) {
     std::vector<PointFigures> all;
     for (const BandPoint& point : points) all.push_back(figures_of(sums, point, rule.relative_to_design, confidence));
     const std::vector<PointFigures> shown = thinned(all);
@@ -112,8 +176,11 @@ Plot response_plot(const ResponseRule& rule, const std::vector<BandPoint>& point
                     "dB",
                     {std::move(gain_design), std::move(gain)}};
     for (const BandDecision& band : bands) {
-        const ResponseBand& asked = band.band();
-        gains.limits.push_back({asked.from_hz, asked.to_hz, asked.min_db, asked.max_db, band.verdict()});
+        if (const auto& asked = band.band()) {
+            gains.limits.push_back({asked->from_hz, asked->to_hz, asked->min_db, asked->max_db, band.verdict()});
+        } else {
+            add_mask(band, gains.limits);
+        }
         for (const auto& [hz, verdict] : band.decisive_points(sums)) {
             if (verdict != Verdict::pass && plot.marks.size() < most_marks)
                 plot.marks.push_back(
@@ -121,7 +188,10 @@ Plot response_plot(const ResponseRule& rule, const std::vector<BandPoint>& point
         }
     }
     plot.panels.push_back(std::move(gains));
-    plot.panels.push_back({"phase", "degrees", {std::move(phase_design), std::move(phase)}, {}, true});
+    PlotPanel angles{"phase", "degrees", {std::move(phase_design), std::move(phase)}, {}, true};
+    if (phases.limits_phase()) add_phase_limit(phases, angles);
+    plot.panels.push_back(std::move(angles));
+    if (phases.limits().limits_delay()) plot.panels.push_back(delay_panel(phases, sums, plot.x, confidence));
     return plot;
 }
 

@@ -7,6 +7,7 @@
 #include "oracle/judge/error_judge.hpp"
 #include "oracle/judge/exact_judge.hpp"
 #include "oracle/judge/latency_check.hpp"
+#include "oracle/judge/latency_fraction.hpp"
 #include "oracle/judge/noise_judge.hpp"
 #include "oracle/judge/response_judge.hpp"
 #include "oracle/judge/silence_judge.hpp"
@@ -17,10 +18,9 @@
 namespace halflsb {
 namespace {
 
-// Judged elsewhere.
+// Judged elsewhere; of a latency the fraction of a sample is not (latency_fraction.hpp).
 WantedReferences wanted_by(const LatencyRule&, bool) { return {}; }
 WantedReferences wanted_by(const UnchangedRule&, bool) { return {}; }
-std::unique_ptr<RuleJudge> make_judge(const LatencyRule&, const Rule&, const JudgedChannel&) { return nullptr; }
 std::unique_ptr<RuleJudge> make_judge(const UnchangedRule&, const Rule&, const JudgedChannel&) { return nullptr; }
 
 }  // namespace

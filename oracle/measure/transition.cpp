@@ -180,10 +180,11 @@ TransitionFigure final_value_of(std::span<const double> stretch, double half_ban
     for (std::size_t b = 0; b < batches; ++b) means[b] = mean_of(stretch.subspan(rest + b * length, length));
     const double uncertainty = deviation_of(means) / std::sqrt(static_cast<double>(batches));
     const std::span all(means);
-    const double change = std::fabs(mean_of(all.last(batches / 2)) - mean_of(all.first(batches / 2)));
+    const std::size_t half = batches / 2;
+    const double change = std::fabs(mean_of(all.last(half)) - mean_of(all.first(half)));
     // A change between halves also widens the spread of all: what is left within the halves says how sure it is.
-    const double within = std::hypot(deviation_of(all.first(batches / 2)), deviation_of(all.last(batches / 2))) /
-                          std::sqrt(static_cast<double>(batches / 2));
+    const double within =
+        std::hypot(deviation_of(all.first(half)), deviation_of(all.last(half))) / std::sqrt(static_cast<double>(half));
     if (change > half_band && change > 4.0 * within) return none(Fault::still_moving);
     return some(mean_of(stretch), uncertainty, 0.0);
 }

@@ -16,6 +16,13 @@ const Recipe& latency_recipe() {
              .maximum = lag_window_samples,
              .required = true,
              .help = "The delay that is right; every case without this rule is held to 0."},
+            {.name = "max_fraction_samples",
+             .unit = "samples",
+             .minimum = 0.0,
+             .maximum = 1.0,
+             .above_minimum = true,
+             .help = "Largest delay beside the whole samples, either way, from the slope of the phase; needs noise or "
+                     "a prbs."},
         }};
     return recipe;
 }
@@ -23,6 +30,7 @@ const Recipe& latency_recipe() {
 Outcome<LatencyRule> make_latency_rule(const ParameterValues& values, const RuleContext&) {
     LatencyRule rule;
     rule.expected_samples = static_cast<int>(*values.integer(latency_recipe(), "latency_samples"));
+    rule.max_fraction_samples = values.number(latency_recipe(), "max_fraction_samples");
     return rule;
 }
 

@@ -1,5 +1,7 @@
-// The rule latency: whole samples of delay.
+// The rule latency: whole samples of delay, and what is left of one.
 #pragma once
+
+#include <optional>
 
 #include "oracle/rules/rule_words.hpp"
 #include "stimuli/outcome.hpp"
@@ -9,9 +11,12 @@ namespace halflsb {
 
 /// Whole-sample delay of the response behind the reference, exactly this many.
 struct LatencyRule {
+    /// Of the whole samples: a limit on their fraction makes it a random figure (is_uncertain, certainty.hpp).
     static constexpr bool is_exact = true, ends_early = true;
     int expected_samples = 0;  ///< within the lag window
     bool implicit = false;     ///< the one each case has without asking
+    /// Largest delay beside the whole samples, either way.
+    std::optional<double> max_fraction_samples = {};
 };
 
 const Recipe& latency_recipe();

@@ -1,10 +1,10 @@
 #include "runner/config/csv_signal.hpp"
 
 #include <algorithm>
-#include <charconv>
 #include <cmath>
 
 #include "runner/config/column_times.hpp"
+#include "runner/config/csv_cells.hpp"
 #include "stimuli/number_text.hpp"
 
 namespace halflsb {
@@ -16,38 +16,9 @@ constexpr std::string_view how =
     "write the same count of numbers on every line, with a decimal point, between commas, semicolons or tabs";
 constexpr std::string_view point = "write numbers with a decimal point, 0.5";
 
-struct Cell {
-    std::string_view text;   ///< without blanks around it
-    std::size_t offset = 0;  ///< of the text in the line, bytes
-};
-
-void split(std::string_view line, char separator, std::vector<Cell>& cells) {
-    cells.clear();
-    for (std::size_t begin = 0;;) {
-        const std::size_t end = std::min(line.find(separator, begin), line.size());
-        std::size_t first = begin, last = end;
-        while (first < last && (line[first] == ' ' || line[first] == '\t')) ++first;
-        while (last > first && (line[last - 1] == ' ' || line[last - 1] == '\t')) --last;
-        cells.push_back({line.substr(first, last - first), first});
-        if (end == line.size()) return;
-        begin = end + 1;
-    }
-}
-
-/// The whole text as a number; it may be NaN or infinite.
-std::optional<double> number_of(std::string_view text) {
-    const std::string_view digits = text.starts_with('+') && !text.starts_with("+-") ? text.substr(1) : text;
-    double value = 0.0;
-    const auto [end, failure] = std::from_chars(digits.data(), digits.data() + digits.size(), value);
-    // What is too small for a double is 0 for a sample; what is too large is an error below.
-    if (end != digits.data() + digits.size() || digits.empty()) return std::nullopt;
-    if (failure == std::errc::result_out_of_range) return std::nullopt;
-    return value;
-}
-
 /// A name starts with a letter, in whatever script.
 bool is_name(std::string_view text) {
-    if (text.empty() || number_of(text)) return false;
+    if (text.empty() || csv_number(text)) return false;
     const auto first = static_cast<unsigned char>(text.front());
     return (first >= 'a' && first <= 'z') || (first >= 'A' && first <= 'Z') || first == '_' || first == '"' ||
            first >= 0x80U;
@@ -79,16 +50,6 @@ private:
     void refuse(Place place, std::string_view problem, std::string_view remedy) {
         if (problem_.empty()) problem_ = source_.render(place, problem, remedy);
     }
-    Place place_of(int number, std::string_view line, std::size_t offset) const {
-        return {number, static_cast<int>(columns_before(line, offset)) + 1};
-    }
-    static std::size_t columns_before(std::string_view line, std::size_t offset) {
-        // A byte that goes on in a UTF-8 sequence is no column of its own.
-        return static_cast<std::size_t>(
-            std::count_if(line.begin(), line.begin() + static_cast<std::ptrdiff_t>(offset),
-                          [](char c) { return (static_cast<unsigned char>(c) & 0xc0U) != 0x80U; }));
-    }
-
     void read_line(int number) {
         const std::string_view whole = source_.line(number);
         const std::size_t hash = whole.find('#');
@@ -99,14 +60,14 @@ private:
             separator_ = line.find(';') != std::string_view::npos    ? ';'
                          : line.find('\t') != std::string_view::npos ? '\t'
                                                                      : ',';
-            split(line, separator_, cells_);
+            split_cells(line, separator_, cells_);
             start_columns(number, line);
-            if (std::all_of(cells_.begin(), cells_.end(), [](const Cell& cell) { return is_name(cell.text); })) {
+            if (std::all_of(cells_.begin(), cells_.end(), [](const CsvCell& cell) { return is_name(cell.text); })) {
                 read_names(number, line);
                 return;
             }
         } else {
-            split(line, separator_, cells_);
+            split_cells(line, separator_, cells_);
         }
         read_numbers(number, line);
     }
@@ -120,8 +81,8 @@ private:
         at = std::min(line.find_first_not_of(" \t", at + 1), line.size());
         std::string_view text = line.substr(at);
         text = text.substr(0, text.find_last_not_of(" \t") + 1);
-        const auto rate_hz = number_of(text);
-        const Place place = place_of(number, line, at);
+        const auto rate_hz = csv_number(text);
+        const Place place = csv_place(number, line, at);
         if (!rate_hz || !std::isfinite(*rate_hz) || !(*rate_hz > 0.0)) {
             refuse(place, quoted(text) + " is no sample rate", "write # rate_hz = 1200, or no such comment");
         } else if (rate_hz_ && *rate_hz_ != *rate_hz) {
@@ -133,7 +94,7 @@ private:
 
     void start_columns(int number, std::string_view line) {
         if (cells_.size() > most_signal_columns) {
-            refuse(place_of(number, line, cells_[most_signal_columns].offset),
+            refuse(csv_place(number, line, cells_[most_signal_columns].offset),
                    std::to_string(cells_.size()) + " columns, the most are " + std::to_string(most_signal_columns),
                    "leave out those that no case uses");
         }
@@ -145,7 +106,7 @@ private:
         for (std::size_t c = 0; c < cells_.size(); ++c) {
             std::string column = unquoted(cells_[c].text);
             if (std::find(names_.begin(), names_.end(), column) != names_.end()) {
-                refuse(place_of(number, line, cells_[c].offset), "two columns are called " + quoted(column),
+                refuse(csv_place(number, line, cells_[c].offset), "two columns are called " + quoted(column),
                        "give each column a name of its own");
                 return;
             }
@@ -158,7 +119,7 @@ private:
         if (cells_.size() != columns_.size()) {
             const std::size_t last = std::min(cells_.size(), columns_.size() + 1) - 1;
             const bool is_doubled = separator_ == ',' && cells_.size() == 2 * columns_.size();
-            refuse(place_of(number, line, cells_[last].offset),
+            refuse(csv_place(number, line, cells_[last].offset),
                    std::to_string(cells_.size()) + (cells_.size() == 1 ? " column" : " columns") + " in this line, " +
                        std::to_string(columns_.size()) + " in those above" +
                        (is_doubled ? ": have the numbers a decimal comma?" : ""),
@@ -167,9 +128,9 @@ private:
         }
         for (std::size_t c = 0; c < cells_.size(); ++c) {
             const std::string_view text = cells_[c].text;
-            const auto value = number_of(text);
+            const auto value = csv_number(text);
             if (!value || !std::isfinite(*value)) {
-                refuse_cell(place_of(number, line, cells_[c].offset), text, value.has_value());
+                refuse_cell(csv_place(number, line, cells_[c].offset), text, value.has_value());
                 return;
             }
             if (c == time_column_) {
@@ -219,7 +180,7 @@ private:
     const SourceText& source_;
     std::string problem_;
     char separator_ = '\0';
-    std::vector<Cell> cells_;
+    std::vector<CsvCell> cells_;
     std::vector<std::string> names_;
     std::vector<std::vector<double>> columns_;
     bool whole_numbers_ = true;

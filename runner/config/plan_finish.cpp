@@ -29,6 +29,14 @@ void check_bands(const Case& the_case, Problems& problems) {
                          "give that case a response rule of its own");
             break;
         }
+        // That of a standard is judged as far as Nyquist.
+        const bool is_file = response->mask && response->mask->source.empty();
+        if (is_file && !(response->mask->to_hz() <= nyquist_hz)) {
+            problems.add(place_of(rule.position, problems),
+                         "the mask of " + quoted(response->mask->name) + " ends above Nyquist of case " +
+                             quoted(the_case.name) + ", " + number_text(nyquist_hz) + " Hz",
+                         "give that case a response rule of its own");
+        }
     }
 }
 

@@ -3,6 +3,7 @@
 #include <cmath>
 
 #include "runner/config/bands.hpp"
+#include "runner/config/csv_mask.hpp"
 #include "runner/config/nested_stimuli.hpp"
 #include "runner/config/reader.hpp"
 #include "runner/config/signal_file.hpp"
@@ -183,6 +184,21 @@ std::optional<std::shared_ptr<const SignalFile>> signal_file_of(const Parameter&
     return known;
 }
 
+std::optional<std::shared_ptr<const SignalFile>> mask_file_of(const Parameter& parameter, const TomlValue& value,
+                                                              ReadContext& context) {
+    const auto path = text_of(parameter, value, context);
+    if (!path) return std::nullopt;
+    const auto bytes = named_bytes(parameter, value, *path, context);
+    if (!bytes) return std::nullopt;
+    const SourceText source(context.root + "/" + *path, std::string(*bytes));
+    auto read = read_csv_mask(*path, source, context.nyquist_hz);
+    if (const auto* text = std::get_if<std::string>(&read)) {
+        context.problems.add_rendered(value.place, *text);
+        return std::nullopt;
+    }
+    return std::make_shared<const SignalFile>(std::get<SignalFile>(std::move(read)));
+}
+
 template <class T>
 std::optional<ParameterValue> as_value(std::optional<T> value) {
     if (!value) return std::nullopt;
@@ -222,6 +238,8 @@ std::optional<ParameterValue> read_value(const Parameter& parameter, const TomlE
             return as_value(read_bands(value, context));
         case ParameterType::signal_file:
             return as_value(signal_file_of(parameter, value, context));
+        case ParameterType::mask_file:
+            return as_value(mask_file_of(parameter, value, context));
         case ParameterType::stimuli:
             if (value.kind != TomlValue::Kind::array) {
                 refuse_type(parameter, value, parameter.name, wanted_text(parameter.type), context);

@@ -47,6 +47,8 @@ std::string type_text(const Parameter& parameter) {
             return "file of numbers, under the root";
         case ParameterType::signal_file:
             return "CSV or NPY file, under the root";
+        case ParameterType::mask_file:
+            return "CSV file, under the root";
         case ParameterType::integers:
             return "list of whole numbers";
         case ParameterType::stimuli:

@@ -37,9 +37,9 @@ void put_standard_cases(TomlValue& tree, TomlValue set, const Plan& plan, const 
         for (TomlValue& rule : rules_of(table)) written.push_back(std::move(rule));
     }
     for (TomlValue& table : cases.items) {
-        std::vector<TomlValue> held = held_rules(table, plan, written, context);
+        const std::vector<TomlValue> held = held_rules(table, plan, written, context);
         for (TomlEntry& entry : table.entries) {
-            if (entry.key == "rule") entry.value.items = std::move(held);
+            if (entry.key == "rule") entry.value.items = held;
         }
     }
     std::erase_if(cases.items, [](const TomlValue& table) { return rules_of(table).empty(); });

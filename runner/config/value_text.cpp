@@ -39,6 +39,7 @@ std::string wanted_text(ParameterType type) {
             return "a list of tables";
         case ParameterType::file:
         case ParameterType::signal_file:
+        case ParameterType::mask_file:
             return "the name of a file";
         case ParameterType::integers:
             return "a list of whole numbers";
@@ -69,6 +70,8 @@ std::string example_text(const Parameter& parameter) {
             return start + "\"taps.txt\", a path under the root";
         case ParameterType::signal_file:
             return start + "\"recorded.npy\", a path under the root";
+        case ParameterType::mask_file:
+            return start + "\"mask.csv\", a path under the root";
         case ParameterType::integers:
             return start + "[1, 2]";
         case ParameterType::stimuli:

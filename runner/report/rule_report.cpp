@@ -55,7 +55,7 @@ std::string measured_within(const JudgedFigure& figure, const TextStyle& style) 
 std::string limit_with_sign(const JudgedFigure& figure, const Rule& rule, const TextStyle& style) {
     if (!figure.limit) return "none";
     std::string sign = figure.at_least ? (style.unicode ? "≥ " : ">= ") : (style.unicode ? "≤ " : "<= ");
-    if (std::holds_alternative<LatencyRule>(rule.kind)) sign = "= ";
+    if (std::holds_alternative<LatencyRule>(rule.kind) && figure.name == "latency") sign = "= ";
     const std::string number =
         figure.value ? compared_text(*figure.value, *figure.limit).second : rounded_text(*figure.limit);
     return sign + with_unit(number, figure.unit);

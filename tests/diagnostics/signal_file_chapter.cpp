@@ -166,6 +166,54 @@ void show_uses(Page& page) {
          {"nan.csv", {"raw"}, {{std::numeric_limits<double>::quiet_NaN()}}, true, std::nullopt});
 }
 
+/// The mask of a response rule.
+void show_masks(Page& page) {
+    const std::string header = "from_hz,to_hz,min_db,max_db\n";
+    const std::vector<File> masks = {
+        {"a mask without rows", header},
+        {"a mask without limits", header + "0,100,,\n"},
+        {"a mask with another header", "frequency,gain\n0,1\n"},
+        {"a mask with semicolons", "from_hz;to_hz;min_db;max_db\n"},
+        {"a mask with a short row", header + "0,100,-1\n"},
+        {"a mask without a frequency", header + "0,,-1,1\n"},
+        {"a mask with a word for a limit", header + "0,100,low,1\n"},
+        {"a mask with an infinite limit", header + "0,100,-inf,1\n"},
+        {"a mask below 0", header + "-1,100,-1,1\n"},
+        {"a row that runs backwards", header + "100,100,-1,1\n"},
+        {"a mask above Nyquist", header + "0,601,-1,1\n"},
+        {"limits that cross in a mask", header + "0,100,1,-1\n"},
+        {"a mask with a gap", header + "0,100,-1,1\n110,600,,-20\n"},
+        {"rows that overlap", header + "0,100,-1,1\n90,600,,-20\n"},
+        {"a mask that is no text", header + std::string(1, '\0')},
+    };
+    const auto parts_of = [](const std::string& words) {
+        Parts parts;
+        parts.rule = "kind = \"response\"\n" + words;
+        return parts;
+    };
+    for (const File& mask : masks) {
+        FakeFiles files;
+        files.contents["./mask.csv"] = mask.bytes;
+        show_plan(page, mask.done, parts_of("mask_file = \"mask.csv\"\n").text(), files);
+    }
+    FakeFiles files;
+    files.contents["./mask.csv"] = header + "0,500,-90,1\n";
+    files.contents["./narrow.csv"] = header + "0.1,0.2,-90,1\n";
+    std::string rows = header;
+    for (int row = 0; row <= 10000; ++row) rows += std::to_string(row) + "," + std::to_string(row + 1) + ",-1,\n";
+    files.contents["./long.csv"] = rows;
+    show_plan(page, "a mask that is not there", parts_of("mask_file = \"gone.csv\"\n").text(), files);
+    show_plan(page, "a number for a mask", parts_of("mask_file = 3\n").text(), files);
+    Parts fast = parts_of("mask_file = \"long.csv\"\n");
+    fast.signal = "rate_hz = 48000.0\ninput = \"q15\"\noutput = \"q15\"\n";
+    show_plan(page, "a mask with too many rows", fast.text(), files);
+    show_plan(page, "two masks", parts_of("mask_file = \"mask.csv\"\nmask = \"a-weighting class 1\"\n").text(), files);
+    show_plan(page, "a mask between the bins", parts_of("mask_file = \"narrow.csv\"\n").text(), files);
+    Parts slow = parts_of("mask_file = \"mask.csv\"\n");
+    slow.of_case = "rate_hz = 600.0\n";
+    show_plan(page, "a mask above Nyquist of a case", slow.text(), files);
+}
+
 }  // namespace
 
 void signal_file_chapter(Page& page) {
@@ -175,6 +223,8 @@ void signal_file_chapter(Page& page) {
     show_files(page, "belt.npy", npy_files());
     page.chapter("Samples of a file as a stimulus");
     show_uses(page);
+    page.chapter("Masks of a CSV file");
+    show_masks(page);
 }
 
 }  // namespace halflsb::diagnostics

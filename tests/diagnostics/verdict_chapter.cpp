@@ -137,6 +137,40 @@ void show_rules(Page& page) {
              for (std::size_t n = 0; n < r.size(); ++n) r[n] += static_cast<Code>(n * 7919 % 6007) - 3003;
              return r;
          });
+    const auto spread = [](std::vector<Code> r) {
+        std::uint64_t state = 1;
+        for (Code& code : r) {
+            state = state * 6364136223846793005U + 1442695040888963407U;
+            code = std::clamp<Code>(code + static_cast<Code>(state >> 51) - 4096, -32768, 32767);
+        }
+        return r;
+    };
+    const std::string long_noise = "shape = \"noise\"\nlength_samples = 8192\nlevel_ratio = 0.5\n";
+    show("phases of a board with noise",
+         small("[[case.rule]]\nkind = \"response\"\nmax_phase_deg = 1\ndelta_deg = 0.01\n", long_noise), spread);
+    show("one delay of a board with noise",
+         small("[[case.rule]]\nkind = \"response\"\nmax_group_delay_samples = 0.1\nphase_from_hz = 10\n"
+               "phase_to_hz = 20\n",
+               long_noise),
+         spread);
+    show("a phase off the design",
+         small("[[case.rule]]\nkind = \"response\"\nmax_phase_deg = 1\nmax_group_delay_samples = 0.1\n", long_noise),
+         [](std::vector<Code> r) {
+             for (std::size_t n = r.size() - 1; n > 0; --n) r[n] = (r[n] + r[n - 1]) / 2;
+             return r;
+         });
+    show("a weighting that is another",
+         small("[[case.rule]]\nkind = \"response\"\nmask = \"a-weighting class 1\"\n", long_noise),
+         [](std::vector<Code> r) { return r; });
+    show("a band filter that is none",
+         small("[[case.rule]]\nkind = \"response\"\nmask = \"octave class 1\"\nmid_hz = 100\n", long_noise),
+         [](std::vector<Code> r) { return r; });
+    const std::string fraction = "[[case.rule]]\nkind = \"latency\"\nlatency_samples = 0\nmax_fraction_samples = ";
+    show("a fraction of a latency near its limit", small(fraction + "0.01\n", long_noise), spread);
+    show("a fraction of a latency beyond its limit", small(fraction + "0.25\n", long_noise), [](std::vector<Code> r) {
+        for (std::size_t n = r.size() - 1; n > 0; --n) r[n] = (r[n] + r[n - 1]) / 2;
+        return r;
+    });
     show("a response of nothing",
          small(bands, "shape = \"sine\"\nlength_samples = 1200\nfrequency_hz = 50\nrealisations = 4\n"),
          [](std::vector<Code> r) { return std::vector<Code>(r.size()); });

@@ -123,10 +123,13 @@ def welch_case(rng, program):
         cross, power = signal.csd(x, e, **options)[1], signal.welch(x, **options)[1]
         half = segment // 2 + 1
         expected = cross[:half] / power[:half]
-        # Transforms round at log2(4096) 2^-53 of the rms over all bins; a bin of little power feels it more.
+        # Transforms round at u = log2(4096) 2^-53 of the rms over all bins: dX of X, dE of E. Of E / X in a bin of power P
+        # the error is (3 |E| dX / |X| + dE) / |X|, and with it times |X| over the rms of X, u (3 |E| / |X| + rms E / rms X).
         weight = np.sqrt(np.mean(power) / power[:half])
-        scale = np.sqrt(np.mean(e * e) / np.mean(x * x))
-        checks.close("welch difference", (points[:, 1] + 1j * points[:, 2] - expected) / weight, np.zeros(half), 1e-13 * scale)
+        noise = signal.welch(e, **options)[1][:half]
+        allowed = 3 * np.sqrt(noise / power[:half]) + np.sqrt(np.mean(e * e) / np.mean(x * x))
+        # 4e-15 is 3 u: the largest of some thousand bins, not their rms.
+        checks.close("welch difference", (points[:, 1] + 1j * points[:, 2] - expected) / weight / allowed, np.zeros(half), 4e-15)
         # scaling="spectrum" divides by the squared sum of the window, (segment / 2)^2
         checks.close("stimulus power", points[:, 3] / (segment / 2) ** 2, power[:half], 1e-13 * np.max(power))
         checks.equal("bins", points[:, 0], np.arange(half) / segment)

@@ -8,7 +8,7 @@ import pathlib
 import re
 import sys
 
-ORACLE = ["oracle/filters", "oracle/arithmetic", "oracle/measure", "oracle/rules", "oracle/judge"]
+ORACLE = ["oracle/filters", "oracle/arithmetic", "oracle/measure", "oracle/rules", "oracle/judge", "oracle/explain"]
 
 # room: (rooms it sees directly, outside headers it may include besides the standard library)
 ROOMS = {
@@ -18,6 +18,7 @@ ROOMS = {
     "oracle/measure": (["stimuli"], ["kissfft/", "boost/math/distributions/"]),
     "oracle/rules": (["oracle/measure"], []),
     "oracle/judge": (["oracle/rules", "oracle/arithmetic"], []),
+    "oracle/explain": (["oracle/judge"], []),
     "runner/world": (ORACLE + ["stimuli"], ["spdlog/", "sha2.h", "os"]),
     "runner/link": (["runner/world", "stimuli"], ["boost/asio", "libserialport.h", "spdlog/", "os"]),
     "runner/wire": (["runner/link"], ["boost/crc.hpp", "spdlog/", "unistd.h"]),

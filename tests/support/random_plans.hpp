@@ -212,6 +212,8 @@ private:
                 return "[1]";
             case ParameterType::signal_file:
                 return file("code\n0\n5\n-7\n100\n", ".csv");
+            case ParameterType::mask_file:
+                return file("from_hz,to_hz,min_db,max_db\n0,0.5,-20,20\n", ".csv");
             case ParameterType::stimuli:
                 return list(1 + below(2), [&] { return inner_stimulus(); });
         }
@@ -239,6 +241,53 @@ private:
         }
     }
 
+    /// Words about a limit of a response need the limit, and some a fitting other word.
+    void add_response_limits(Table& table) {
+        if (table.recipe == nullptr || table.recipe->name != "response") return;
+        const auto has = [&](std::string_view name) {
+            return std::any_of(table.keys.begin(), table.keys.end(), [&](const Key& key) { return key.name == name; });
+        };
+        const auto drop = [&](std::string_view name) {
+            std::erase_if(table.keys, [&](const Key& key) { return key.name == name; });
+        };
+        const auto put = [&](const std::string& name, const std::string& value) {
+            drop(name);
+            table.keys.push_back({name, value, find_parameter(*table.recipe, name), false});
+        };
+        if (has("tolerance_db") || has("reference_hz") || has("reference_db")) {
+            for (const char* other : {"mask_file", "mid_hz", "relative_to"}) drop(other);
+            put("mask", "\"k-weighting\"");
+            put("tolerance_db", "1.5");
+            put("reference_hz", "100.0");
+        } else if (has("mid_hz")) {
+            for (const char* other : {"mask_file", "relative_to"}) drop(other);
+            put("mask", "\"octave class 2\"");
+            put("mid_hz", "100.0");
+        } else if (has("mask")) {
+            for (const char* other : {"mask_file", "relative_to"}) drop(other);
+            put("mask", "\"c-weighting class 1\"");
+        }
+        if (has("min_group_delay_samples")) {
+            put("phase_relative_to", "\"absolute\"");
+            put("min_group_delay_samples", "-5.5");
+            put("max_group_delay_samples", "50.0");
+        } else if (has("max_group_delay_samples")) {
+            put("max_group_delay_samples", "0.5");
+        }
+        if (has("phase_from_hz") || has("phase_to_hz")) {
+            put("phase_from_hz", "10.0");
+            put("phase_to_hz", "100.0");
+            drop("passband_db");
+        }
+        const bool is_about_phase = std::any_of(table.keys.begin(), table.keys.end(), [](const Key& key) {
+            return key.name.starts_with("phase_") || key.name == "passband_db" || key.name == "delta_deg" ||
+                   key.name == "delta_samples";
+        });
+        if (is_about_phase && !has("max_group_delay_samples")) put("max_phase_deg", "10.0");
+        if (!has("mask") && !has("mask_file") && !has("bands") && (has("relative_to") || !is_about_phase))
+            put("bands", list(1, [&] { return band(); }));
+    }
+
     /// The table with its required words and some of the others, thinned out until `taken` takes it. False when
     /// even one of the others does not do.
     template <class Taken>
@@ -257,6 +306,7 @@ private:
             table = base;
             table.keys.insert(table.keys.end(), others.begin(), others.begin() + static_cast<std::ptrdiff_t>(count));
             add_named_file(table);
+            add_response_limits(table);
             if (taken(table)) return true;
         }
         table = base;
@@ -265,6 +315,7 @@ private:
             table = base;
             table.keys.push_back(key);
             add_named_file(table);
+            add_response_limits(table);
             if (taken(table)) return true;
         }
         return false;

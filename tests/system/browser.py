@@ -2,8 +2,11 @@
 import base64
 import json
 import os
+import pathlib
 import re
+import shutil
 import subprocess
+import tempfile
 import time
 import urllib.error
 import urllib.request
@@ -13,21 +16,31 @@ START_S, ANSWER_S = 60, 120
 
 
 class Browser:
-    """One window, empty at first; gone at the end of `with`."""
+    """One window, empty at first; gone at the end of `with`, and with it the folder that takes whatever the browser and
+    its driver write: profile, caches, crash dumps, sockets."""
 
     def __init__(self, width=1100, height=900, dark=False):
         self.arguments = ["--headless=new", "--no-sandbox", "--disable-gpu", "--disable-dev-shm-usage", "--hide-scrollbars",
                           f"--window-size={width},{height}"] + (["--blink-settings=preferredColorScheme=0"] if dark else [])
 
     def __enter__(self):
+        self.folder = pathlib.Path(tempfile.mkdtemp(prefix="halflsb-browser-"))
+        try:
+            return self.start()
+        except BaseException:
+            self.remove_folder()
+            raise
+
+    def start(self):
+        home = {name: str(self.folder) for name in ("HOME", "TMPDIR", "XDG_CONFIG_HOME", "XDG_CACHE_HOME", "XDG_RUNTIME_DIR")}
         # Port 0: the driver takes a free one and says which.
         self.driver = subprocess.Popen(["chromedriver", "--port=0"], stdout=subprocess.PIPE, stderr=subprocess.DEVNULL,
-                                       text=True, start_new_session=True, env={**os.environ, "LC_ALL": "C.UTF-8"})
+                                       text=True, start_new_session=True, env={**os.environ, "LC_ALL": "C.UTF-8", **home})
         try:
             said = next((line for line in self.driver.stdout if "successfully on port" in line), "")
             self.base = f"http://127.0.0.1:{re.search('[0-9]+', said)[0]}"
             wanted = {"browserName": "chrome", "goog:loggingPrefs": {"browser": "ALL"},
-                      "goog:chromeOptions": {"args": self.arguments}}
+                      "goog:chromeOptions": {"args": [*self.arguments, f"--user-data-dir={self.folder / 'profile'}"]}}
             begun = self.ask("POST", "/session", {"capabilities": {"alwaysMatch": wanted}}, START_S)
         except BaseException:
             self.end_driver()
@@ -40,11 +53,19 @@ class Browser:
             self.ask("DELETE", self.session)
         finally:
             self.end_driver()
+            self.remove_folder()
 
     def end_driver(self):
         self.driver.terminate()
         self.driver.wait(20)
         self.driver.stdout.close()
+
+    def remove_folder(self):
+        """Helpers of the browser end a moment after it, and write until then."""
+        deadline = time.monotonic() + 10
+        while self.folder.exists() and time.monotonic() < deadline:
+            shutil.rmtree(self.folder, ignore_errors=True)
+            time.sleep(0.02)
 
     def ask(self, method, path, body=None, limit_s=ANSWER_S):
         data = None if method == "GET" else json.dumps(body or {}).encode()

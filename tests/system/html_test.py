@@ -1,10 +1,14 @@
 """report.html in a real browser: no error on its console, nothing loaded, the figures those of run.json, plots that zoom
 by mouse, keys and buttons, a table of the values, and text of the plan that stays text."""
 import json
+import os
+import pathlib
 import re
+import subprocess
+import sys
 
 from browser import Browser
-from support import NOISE, STEP, Case, halflsb, main
+from support import LIMIT_S, NOISE, STEP, Case, halflsb, main
 
 RESPONSE = """[[case.rule]]
 kind = "response"
@@ -248,9 +252,23 @@ class Html(Case):
             self.assertEqual(browser.run("return document.getElementById('verdict').dataset.verdict"), "invalid")
             self.assertEqual(browser.run("return document.querySelectorAll('.plot').length"), 0)
             text = browser.run("return document.body.textContent")
-            for part in ("Nothing was judged", "The run ended early", "not run", "not complete"):
+            invalid = self.record()["verdict"]["cases"][0]["invalid"]
+            self.assertIn("unplugged", invalid["problem"])
+            for part in ("Nothing was judged", "The run ended early", "not run", "not complete", invalid["problem"], invalid["remedy"]):
                 self.assertIn(part, text)
             self.assert_quiet(browser)
+
+    def test_a_browser_leaves_nothing_behind_even_when_its_test_fails(self):
+        page = self.write("page.html", "<p>x</p>")
+        home = {"TMPDIR": str(self.folder / "tmp"), "HOME": str(self.folder / "home")}
+        script = ("import pathlib, sys; from browser import Browser\nwith Browser() as browser:\n"
+                  "    browser.open(pathlib.Path(sys.argv[1])); raise SystemExit(7)")
+        for folder in home.values():
+            pathlib.Path(folder).mkdir()
+        done = subprocess.run([sys.executable, "-B", "-c", script, str(page)], cwd=pathlib.Path(__file__).parent,
+                              env={**os.environ, **home}, timeout=LIMIT_S)
+        self.assertEqual(done.returncode, 7)
+        self.assertEqual([name for folder in home.values() for name in os.listdir(folder)], [])
 
 
 if __name__ == "__main__":

@@ -79,6 +79,21 @@ TEST_CASE("declared: the gain comes before the rails", "[arithmetic]") {
     CHECK(run(*filter, std::vector<double>{-1.0, 0.25, 1.0}) == std::vector<double>{-32768.0, 8192.0, 32767.0});
 }
 
+TEST_CASE("declared: a gain that is no power of two comes before the rails too", "[arithmetic]") {
+    const auto i16 = *sample_format("i16"), q15 = *sample_format("q15"), q31 = *sample_format("q31");
+    const auto through = [](const SampleFormat& in, const SampleFormat& out, double gain, double value) {
+        return run(*test::declared_filter({}, in, out, gain), std::vector<double>{value}).front();
+    };
+    // Codes of 16 bits that are to be a full scale: far beyond 1, and within the word all the same.
+    CHECK(through(i16, q15, 3.0e-5, 20000.0) == 20000.0 * 3.0e-5);
+    CHECK(through(i16, q15, 4.0e-5, 30000.0) == 1.0 - 0x1p-15);
+    CHECK(through(i16, q15, -4.0e-5, 30000.0) == -1.0);
+    // Far below 1, and beyond the word.
+    CHECK(through(q15, i16, 100000.0, 0.25) == 25000.0);
+    CHECK(through(q15, i16, 100000.0, 0.5) == 32767.0);
+    CHECK(through(q15, q31, -1.0e12, 0.5) == -1.0);
+}
+
 TEST_CASE("declared: saturation is of the output only, the state runs on", "[arithmetic]") {
     // Gain 3.2 with feedback of second order: the clipped output must not enter the recursion.
     const FilterChain chain{stage(BiquadCascade{{{1.0, 0.0, 0.0, -0.75, 0.0625}}})};

@@ -291,6 +291,25 @@ TEST_CASE("error bound: without noise the worst case stands for rms and bias", "
     CHECK_FALSE(derive(chain, use).is_statistical);
 }
 
+TEST_CASE("error bound: a few codes of a coarse word are no noise to a finer one", "[arithmetic]") {
+    // The mean of five codes of 8 bits in 32: exact for five equal ones, so silence has no bias, and codes of -1, 0 and
+    // 1 have few remainders.
+    FilterStage stage;
+    stage.design = MovingAverage{5};
+    stage.arithmetic.rounding = Rounding::floor;
+    const auto described = describe({stage}, *sample_format("q7"), *sample_format("q31"), 1.0).described;
+    REQUIRE(described);
+    BoundUse use;
+    use.noise_like = true;
+    use.input_rms = 1.0 / 128.0;
+    const ErrorBound quiet = derive(*described, use);
+    CHECK_FALSE(quiet.is_statistical);
+    CHECK(quiet.bias_upper >= 0.0);
+    // The average shows 1 / sqrt(5) of it: 64 codes there.
+    use.input_rms = 64.0 / 128.0 * std::sqrt(5.0);
+    CHECK(derive(*described, use).is_statistical);
+}
+
 TEST_CASE("error bound: errors made before the judged samples are in rms and bias", "[arithmetic]") {
     Random random(404);
     INFO("seed 404");

@@ -14,7 +14,7 @@ using namespace halflsb::random_plans;
 namespace {
 
 constexpr std::uint32_t seed = 20261202;
-const int rounds = test::rounds_of(1000);
+const int rounds = test::rounds_of(1500);
 
 std::string resolved(const std::string& text, FakeFiles files) {
     files.contents["plan.toml"] = text;
@@ -35,6 +35,7 @@ void check_same(const Rule& a, const Rule& b) {
         const auto& other = std::get<LatencyRule>(b.kind);
         CHECK(latency->expected_samples == other.expected_samples);
         CHECK(latency->implicit == other.implicit);
+        CHECK(latency->max_fraction_samples == other.max_fraction_samples);
     } else if (const auto* response = std::get_if<ResponseRule>(&a.kind)) {
         const auto& other = std::get<ResponseRule>(b.kind);
         CHECK(response->relative_to_design == other.relative_to_design);
@@ -45,6 +46,19 @@ void check_same(const Rule& a, const Rule& b) {
             CHECK(response->bands[i].min_db == other.bands[i].min_db);
             CHECK(response->bands[i].max_db == other.bands[i].max_db);
         }
+        REQUIRE(response->mask.has_value() == other.mask.has_value());
+        if (response->mask) {
+            CHECK((response->mask->name == other.mask->name && response->mask->source == other.mask->source));
+            for (const double hz : {10.0, 47.0, 100.0, 333.0})
+                CHECK(response->mask->limits_at(hz).max_db == other.mask->limits_at(hz).max_db);
+        }
+        const PhaseLimits &phase = response->phase, &other_phase = other.phase;
+        CHECK((phase.max_phase_deg == other_phase.max_phase_deg && phase.from_hz == other_phase.from_hz &&
+               phase.to_hz == other_phase.to_hz && phase.passband_db == other_phase.passband_db &&
+               phase.relative_to_design == other_phase.relative_to_design));
+        CHECK((phase.min_group_delay_samples == other_phase.min_group_delay_samples &&
+               phase.max_group_delay_samples == other_phase.max_group_delay_samples &&
+               phase.delta_deg == other_phase.delta_deg && phase.delta_samples == other_phase.delta_samples));
     } else if (const auto* tone = std::get_if<ToneRule>(&a.kind)) {
         const auto& other = std::get<ToneRule>(b.kind);
         CHECK((tone->min_sinad_db == other.min_sinad_db && tone->min_enob_bits == other.min_enob_bits &&

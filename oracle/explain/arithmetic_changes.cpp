@@ -1,0 +1,100 @@
+#include "oracle/explain/arithmetic_changes.hpp"
+
+#include <algorithm>
+
+#include "oracle/arithmetic/described.hpp"
+#include "oracle/arithmetic/plausible_changes.hpp"
+
+namespace halflsb {
+namespace {
+
+/// By the name that plausible_changes gives it.
+std::string where_to_look(std::string_view what) {
+    const auto says = [what](std::string_view word) { return what.find(word) != std::string_view::npos; };
+    if (says("accumulator")) return "the type of the accumulator";
+    if (says("feedback before")) return "which value is kept for the feedback: before or after it is held";
+    if (says("output that")) return "the conversion to the output's type";
+    if (says("coefficients")) return "the conversion of the coefficients";
+    if (says("product")) return "whether each product is shifted before it is added";
+    if (says("fraction")) return "whether the remainder is kept for the next sum";
+    if (says("fused")) return "the compiler's contraction of products and sums";
+    if (says("added first")) return "the order of the loop over the taps";
+    if (says("in place of") && (says("direct") || says("transposed") || says("sum")))
+        return "the structure of the section";
+    return "the constant that is added before the shift, and the shift or division";
+}
+
+class ArithmeticChanges {
+public:
+    ArithmeticChanges(const Hypothesis& from, const Signal& signal) : from_(from), signal_(signal) {}
+
+    std::vector<Hypothesis> all() {
+        const FilterChain& filter = from_.board.filter;
+        const auto described = describe(filter, signal_.input, signal_.output, signal_.output_per_input).described;
+        if (!described) return {};
+        for (const ArithmeticChange& each :
+             plausible_changes(filter, signal_.input, signal_.output, signal_.output_per_input)) {
+            add(each.stage, each.name, each.name.find("accumulator") != std::string::npos ? 5.0 : 4.0,
+                [&](FilterStage& stage) { stage.arithmetic = each.arithmetic; });
+        }
+        for (std::size_t i = 0; i < filter.size(); ++i) {
+            if (described->stages[i].number != NumberKind::integer) continue;
+            products(i, described->stages[i]);
+            widths(i, described->stages[i]);
+        }
+        return std::move(found_);
+    }
+
+private:
+    template <class Alter>
+    void add(std::size_t stage, std::string what, double price_bits, const Alter& alter) {
+        Hypothesis made = from_;
+        alter(made.board.filter[stage]);
+        const std::string look_at = where_to_look(what);
+        add_changed(from_, std::move(made), {Slot::arithmetic, stage, std::move(what), look_at, price_bits}, found_);
+    }
+
+    void products(std::size_t i, const DescribedStage& stage) {
+        if (!has_word(stage.stage, "rounding_at")) return;
+        for (const std::string_view name : rounding_names()) {
+            const Rounding rounding = *rounding_from(name);
+            if (rounding == stage.rounding) continue;  // plausible_changes has that
+            add(i, "each product shortened by " + std::string(name) + " before it is added", 5.0,
+                [&](FilterStage& changed) {
+                    changed.arithmetic.rounding_at = RoundingAt::product;
+                    changed.arithmetic.rounding = rounding;
+                    changed.arithmetic.fraction_saving = false;
+                });
+        }
+    }
+
+    void widths(std::size_t i, const DescribedStage& stage) {
+        if (!has_word(stage.stage, "accumulator_bits")) return;
+        for (const int bits : {8, 12, 16, 24, 32, 40}) {
+            if (bits >= stage.accumulator_bits) continue;
+            for (const Overflow overflow : {Overflow::wrap, Overflow::saturate}) {
+                const bool is_usual = (bits == 16 || bits == 32) && overflow == stage.accumulator_overflow;
+                if (is_usual) continue;  // plausible_changes has that
+                add(i,
+                    "an accumulator of " + std::to_string(bits) + " bits that " +
+                        (overflow == Overflow::wrap ? "wraps" : "saturates"),
+                    bits % 16 == 0 ? 6.0 : 8.0, [&](FilterStage& changed) {
+                        changed.arithmetic.accumulator_bits = bits;
+                        changed.arithmetic.accumulator_overflow = overflow;
+                    });
+            }
+        }
+    }
+
+    const Hypothesis& from_;
+    const Signal& signal_;
+    std::vector<Hypothesis> found_;
+};
+
+}  // namespace
+
+std::vector<Hypothesis> arithmetic_changes(const Hypothesis& from, const Signal& signal) {
+    return ArithmeticChanges(from, signal).all();
+}
+
+}  // namespace halflsb

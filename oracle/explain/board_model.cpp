@@ -1,0 +1,240 @@
+#include "oracle/explain/board_model.hpp"
+
+#include <algorithm>
+
+#include "oracle/arithmetic/described.hpp"
+
+namespace halflsb {
+namespace {
+
+constexpr std::size_t piece_samples = 4096;
+
+std::unique_ptr<Twin> twin_of(const BoardDescription& board, const Signal& signal) {
+    const auto described = describe(board.filter, signal.input, signal.output, signal.output_per_input).described;
+    return described ? make_twin(*described) : nullptr;
+}
+
+/// Which words of a state a reset leaves.
+std::vector<std::int64_t> left_by(ResetKind kind, std::vector<std::int64_t> words) {
+    const auto half = words.begin() + static_cast<std::ptrdiff_t>(words.size() / 2);
+    switch (kind) {
+        case ResetKind::first_half:
+            std::fill(words.begin(), half, 0);
+            break;
+        case ResetKind::second_half:
+            std::fill(half, words.end(), 0);
+            break;
+        case ResetKind::all_but_sum:
+            if (!words.empty()) std::fill(words.begin(), words.end() - 1, 0);
+            break;
+        default:
+            break;
+    }
+    return words;
+}
+
+}  // namespace
+
+BoardModel::BoardModel(const BoardDescription& board, const Signal& signal, std::unique_ptr<Twin> twin)
+    : passage_(board.passage),
+      input_map_(board.input),
+      output_map_(board.output),
+      reset_kind_(board.reset),
+      input_(signal.input),
+      output_(signal.output),
+      twin_(std::move(twin)),
+      held_(zero_code(signal.output)) {}
+
+std::unique_ptr<BoardModel> BoardModel::make(const BoardDescription& board, const Signal& signal) {
+    auto twin = twin_of(board, signal);
+    if (twin == nullptr) return nullptr;
+    const bool is_steady = twin->outputs_for(1) == 1 && twin->outputs_for(5) == 5;
+    const bool needs_steady = board.passage.kind != PassageKind::plain && board.passage.kind != PassageKind::late;
+    if (needs_steady && !is_steady) return nullptr;
+    return std::unique_ptr<BoardModel>(new BoardModel(board, signal, std::move(twin)));
+}
+
+void BoardModel::reset() {
+    if (reset_kind_ == ResetKind::whole || is_first_case_) {
+        twin_->reset();
+    } else if (reset_kind_ != ResetKind::none) {
+        twin_->set_state(left_by(reset_kind_, twin_->state()));
+    }
+}
+
+void BoardModel::begin_case(Start start, std::int64_t start_samples) {
+    if (start == Start::reset) reset();
+    is_first_case_ = false;
+    index_ = 0;
+    repeat_left_ = 0;
+    held_ = zero_code(output_);
+    past_in_.assign(static_cast<std::size_t>(passage_.length), zero_code(input_));
+    past_out_.assign(static_cast<std::size_t>(passage_.length), zero_code(output_));
+    if (start != Start::flush) return;
+    std::vector<Code> zeros(piece_samples, zero_code(input_)), lost;
+    apply(input_map_, input_, zeros);
+    for (std::int64_t left = start_samples; left > 0; left -= std::ssize(zeros)) {
+        zeros.resize(static_cast<std::size_t>(std::min(left, std::ssize(zeros))));
+        lost.clear();
+        run(zeros, lost);
+    }
+}
+
+void BoardModel::process(std::span<const Code> in, std::vector<Code>& out) {
+    while (!in.empty()) {
+        const std::size_t count = std::min(piece_samples, in.size());
+        mapped_.assign(in.begin(), in.begin() + static_cast<std::ptrdiff_t>(count));
+        apply(input_map_, input_, mapped_);
+        const std::size_t before = out.size();
+        pass(mapped_, out);
+        apply_at_output(output_map_, output_, std::span(out).subspan(before));
+        in = in.subspan(count);
+    }
+}
+
+void BoardModel::pass(std::span<const Code> in, std::vector<Code>& out) {
+    switch (passage_.kind) {
+        case PassageKind::plain:
+            return run(in, out);
+        case PassageKind::late:
+            return pass_late(in, out);
+        case PassageKind::each_nth:
+        case PassageKind::twice:
+            return pass_often(in, out);
+        default:
+            return pass_events(in, out);
+    }
+}
+
+void BoardModel::run(std::span<const Code> in, std::vector<Code>& out) {
+    const std::size_t before = out.size();
+    out.resize(before + twin_->outputs_for(in.size()));
+    twin_->process(in, std::span(out).subspan(before));
+}
+
+Code BoardModel::run_one(Code code) {
+    Code result = 0;
+    twin_->process(std::span<const Code>(&code, 1), std::span<Code>(&result, 1));
+    return result;
+}
+
+void BoardModel::pass_late(std::span<const Code> in, std::vector<Code>& out) {
+    const auto before = static_cast<std::ptrdiff_t>(out.size());
+    run(in, out);
+    // past_out_ has as many outputs as the board is late.
+    std::vector<Code>& waiting = past_out_;
+    waiting.insert(waiting.end(), out.begin() + before, out.end());
+    const std::ptrdiff_t count = std::ssize(out) - before;
+    std::copy_n(waiting.begin(), count, out.begin() + before);
+    waiting.erase(waiting.begin(), waiting.begin() + count);
+}
+
+void BoardModel::pass_often(std::span<const Code> in, std::vector<Code>& out) {
+    for (const Code code : in) {
+        if (passage_.kind == PassageKind::each_nth) {
+            if (index_ % passage_.length == passage_.first) held_ = run_one(code);
+        } else {
+            for (std::int64_t call = 0; call < passage_.length; ++call) held_ = run_one(code);
+        }
+        out.push_back(held_);
+        ++index_;
+    }
+}
+
+Code BoardModel::output_ago(const std::vector<Code>& out, std::int64_t samples) const {
+    if (samples <= std::ssize(out)) return out[out.size() - static_cast<std::size_t>(samples)];
+    const std::int64_t before = samples - std::ssize(out);
+    if (before > std::ssize(past_out_)) return zero_code(output_);
+    return past_out_[past_out_.size() - static_cast<std::size_t>(before)];
+}
+
+void BoardModel::pass_events(std::span<const Code> in, std::vector<Code>& out) {
+    std::vector<Code> passed;
+    std::size_t at = 0;
+    while (at < in.size()) {
+        const std::int64_t until = next_event(passage_, index_) - index_;
+        if (until == 0 || repeat_left_ > 0) {
+            event(in, at, passed);
+            continue;
+        }
+        const auto count =
+            static_cast<std::size_t>(std::min<std::int64_t>(until, std::ssize(in) - static_cast<std::ptrdiff_t>(at)));
+        run(in.subspan(at, count), passed);
+        past_in_.insert(past_in_.end(), in.begin() + static_cast<std::ptrdiff_t>(at),
+                        in.begin() + static_cast<std::ptrdiff_t>(at + count));
+        index_ += static_cast<std::int64_t>(count);
+        at += count;
+    }
+    out.insert(out.end(), passed.begin(), passed.end());
+    past_out_.insert(past_out_.end(), passed.begin(), passed.end());
+    const auto keep = [&](std::vector<Code>& past) {
+        const std::ptrdiff_t surplus = std::ssize(past) - passage_.length;
+        if (surplus > 0) past.erase(past.begin(), past.begin() + surplus);
+    };
+    keep(past_in_);
+    keep(past_out_);
+}
+
+/// One sample at which something happens.
+void BoardModel::event(std::span<const Code> in, std::size_t& at, std::vector<Code>& out) {
+    const Code code = in[at++];
+    Code fed = code;
+    if (repeat_left_ == 0 &&
+        (passage_.kind == PassageKind::block_repeated || passage_.kind == PassageKind::output_block_repeated)) {
+        repeat_left_ = passage_.length;
+    }
+    const Code last = output_ago(out, 1);
+    switch (passage_.kind) {
+        case PassageKind::lost:
+            out.push_back(last);
+            break;
+        case PassageKind::lost_shifted:
+            break;
+        case PassageKind::doubled:
+            run_one(code);
+            out.push_back(run_one(code));
+            break;
+        case PassageKind::doubled_shifted:
+            out.push_back(run_one(code));
+            out.push_back(run_one(code));
+            break;
+        case PassageKind::output_lost:
+            run_one(code);
+            break;
+        case PassageKind::output_doubled:
+            out.push_back(run_one(code));
+            out.push_back(out.back());
+            break;
+        case PassageKind::block_repeated:
+            --repeat_left_;
+            fed = past_in_[past_in_.size() - static_cast<std::size_t>(passage_.length)];
+            out.push_back(run_one(fed));
+            break;
+        case PassageKind::output_block_repeated:
+            --repeat_left_;
+            run_one(code);
+            out.push_back(output_ago(out, passage_.length));
+            break;
+        case PassageKind::sample_replaced:
+            fed = static_cast<Code>(zero_code(input_) - (std::int64_t{1} << (input_.word_bits - 1)));
+            out.push_back(run_one(fed));
+            break;
+        case PassageKind::state_cleared:
+            twin_->reset();
+            out.push_back(run_one(code));
+            break;
+        case PassageKind::state_exchanged: {
+            std::vector<std::int64_t> words = twin_->state();
+            if (words.size() > 1) std::swap(words[words.size() - 1], words[words.size() - 2]);
+            twin_->set_state(words);
+            out.push_back(run_one(code));
+            break;
+        }
+        default:
+            break;
+    }
+    past_in_.push_back(fed);
+    ++index_;
+}
+
+}  // namespace halflsb

@@ -1,0 +1,85 @@
+#include "oracle/explain/capture_fit.hpp"
+
+#include <algorithm>
+#include <numeric>
+
+#include "oracle/explain/board_model.hpp"
+
+namespace halflsb {
+namespace {
+
+/// Short first: most hypotheses are given up there.
+constexpr std::size_t first_piece = 64, largest_piece = 4096;
+
+struct OneCase {
+    std::int64_t compared = 0, equal = 0, wrong_index = -1;
+};
+
+OneCase run_case(BoardModel& model, const ChannelCapture& capture) {
+    OneCase result;
+    model.begin_case(capture.start, capture.start_samples);
+    const std::int64_t first = capture.start == Start::running ? capture.start_samples : 0;
+    std::vector<Code> out;
+    std::size_t at = 0, compared = 0, piece = first_piece;
+    while (at < capture.sent.size()) {
+        const std::size_t count = std::min(piece, capture.sent.size() - at);
+        model.process(std::span(capture.sent).subspan(at, count), out);
+        at += count;
+        piece = std::min(2 * piece, largest_piece);
+        for (; compared < std::min(out.size(), capture.response.size()); ++compared) {
+            if (static_cast<std::int64_t>(compared) < first) continue;
+            ++result.compared;
+            if (out[compared] == capture.response[compared]) {
+                ++result.equal;
+                continue;
+            }
+            result.wrong_index = static_cast<std::int64_t>(compared);
+            return result;
+        }
+    }
+    return result;
+}
+
+}  // namespace
+
+CaptureSet::CaptureSet(const Signal& signal, std::vector<ChannelCapture> captures)
+    : signal_(signal), captures_(std::move(captures)), order_(captures_.size()) {
+    std::iota(order_.begin(), order_.end(), std::size_t{0});
+    for (const ChannelCapture& capture : captures_) {
+        is_chained_ = is_chained_ || capture.start == Start::running;
+    }
+}
+
+CaptureFit CaptureSet::until_first_wrong(const BoardDescription& board) const {
+    CaptureFit fit;
+    const auto model = BoardModel::make(board, signal_);
+    if (model == nullptr) return fit;
+    fit.could_run = true;
+    const bool in_order = is_chained_ || board.reset != ResetKind::whole;
+    for (std::size_t place = 0; place < captures_.size(); ++place) {
+        const std::size_t index = in_order ? place : order_[place];
+        const OneCase one = run_case(*model, captures_[index]);
+        fit.compared += one.compared;
+        fit.equal += one.equal;
+        if (one.wrong_index < 0) continue;
+        fit.wrong_case = static_cast<int>(index);
+        fit.wrong_index = one.wrong_index;
+        return fit;
+    }
+    return fit;
+}
+
+void CaptureSet::order_by(const BoardDescription& declared) {
+    const auto model = BoardModel::make(declared, signal_);
+    if (model == nullptr || is_chained_) return;
+    std::vector<std::int64_t> first_wrong(captures_.size());
+    for (std::size_t i = 0; i < captures_.size(); ++i) {
+        const OneCase one = run_case(*model, captures_[i]);
+        // Cases without a difference come last, the short ones first.
+        first_wrong[i] = one.wrong_index >= 0 ? one.wrong_index : (std::int64_t{1} << 40) + one.compared;
+    }
+    std::stable_sort(order_.begin(), order_.end(),
+                     [&](std::size_t a, std::size_t b) { return first_wrong[a] < first_wrong[b]; });
+}
+
+}  // namespace halflsb

@@ -1,0 +1,51 @@
+// What happens between the samples: how the stream of codes passes the filter, and what becomes of its state. One of
+// the slots of a hypothesis. Indices are those of the case, from 0 on; only where one sample comes back for each.
+#pragma once
+
+#include <cstdint>
+#include <string>
+#include <vector>
+
+namespace halflsb {
+
+enum class PassageKind {
+    plain,
+    late,                   ///< each output is that of `length` calls before; zero codes first
+    each_nth,               ///< the filter is called with each `length`-th sample alone, its output repeated
+    twice,                  ///< the filter is called `length` times with each sample, its last output returned
+    lost,                   ///< at an event the sample does not reach the filter, the output is held
+    lost_shifted,           ///< at an event the sample does not reach the filter, what follows moves up by one
+    doubled,                ///< at an event the filter gets the sample twice, the second output is returned
+    doubled_shifted,        ///< at an event the sample comes twice, what follows is one later
+    output_lost,            ///< at an event an output is lost behind the filter, what follows moves up by one
+    output_doubled,         ///< at an event an output comes twice behind the filter, what follows is one later
+    block_repeated,         ///< from an event on `length` samples are those `length` before, for the filter
+    output_block_repeated,  ///< from an event on `length` outputs are those `length` before
+    sample_replaced,        ///< at an event the filter gets the lowest code
+    state_cleared,          ///< before the sample of an event the state is that of a reset
+    state_exchanged,        ///< before the sample of an event the last two words of the state change places
+};
+
+/// When an event happens: at `first`, and where `period` is positive at first + period, first + 2 period ...
+struct Passage {
+    PassageKind kind = PassageKind::plain;
+    std::int64_t length = 1;
+    std::int64_t first = 0, period = 0;
+    bool operator==(const Passage&) const = default;
+};
+
+/// The kind has events.
+bool has_events(PassageKind kind);
+/// The next event at or after `index`; a very large number when there is none.
+std::int64_t next_event(const Passage& passage, std::int64_t index);
+
+/// What a reset does before a case that begins with one.
+enum class ResetKind {
+    whole,
+    none,         ///< nothing: the state of the case before stays
+    first_half,   ///< only the first half of the words of the state is cleared
+    second_half,  ///< only the second half
+    all_but_sum,  ///< all but the last word: a running sum, a remainder
+};
+
+}  // namespace halflsb
