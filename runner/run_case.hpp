@@ -3,6 +3,7 @@
 
 #include <string>
 
+#include "oracle/judge/block_ticks.hpp"
 #include "oracle/judge/plan.hpp"
 #include "oracle/judge/plots.hpp"
 #include "runner/board_settings.hpp"
@@ -28,6 +29,8 @@ struct CaseStage {
     const Clock& clock;
     RunObserver& observer;
     CasePlots* plots = nullptr;  ///< receives what a person wants to see of it; nullptr: nothing is wanted
+    TickCounter tick_counter = {};
+    Recorder* ticks = nullptr;  ///< keeps the board's ticks (block_ticks.hpp); nullptr where no rule asks for them
 };
 
 /// Zeros of a flush and the stimulus: the instants that travel.

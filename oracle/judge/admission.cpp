@@ -28,9 +28,8 @@ std::vector<Refusal> refusals(const Plan& plan, const Case& the_case) {
     check_discard(plan, the_case, found);
     if (!found.empty()) return found;
     for (const Rule& rule : the_case.rules) {
-        // Without a reference only `unchanged` can be asked; the reader refuses the others.
-        if (!plan.filter_is_unknown || std::holds_alternative<UnchangedRule>(rule.kind))
-            check(rule, plan, the_case, found);
+        // Without a reference the reader refuses the others.
+        if (!plan.filter_is_unknown || !needs_reference(kind_name(rule))) check(rule, plan, the_case, found);
     }
     return found;
 }

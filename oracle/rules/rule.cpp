@@ -1,5 +1,6 @@
 #include "oracle/rules/rule.hpp"
 
+#include <algorithm>
 #include <utility>
 
 namespace halflsb {
@@ -21,16 +22,13 @@ struct RuleKind {
 
 /// In the order of the variant.
 constexpr RuleKind kinds[] = {
-    {error_recipe, made<make_error_rule>},
-    {latency_recipe, made<make_latency_rule>},
-    {response_recipe, made<make_response_rule>},
-    {tone_recipe, made<make_tone_rule>},
-    {transition_recipe, made<make_transition_rule>},
-    {noise_recipe, made<make_noise_rule>},
-    {silence_recipe, made<make_silence_rule>},
-    {drift_recipe, made<make_drift_rule>},
-    {unchanged_recipe, made<make_unchanged_rule>},
-    {exact_recipe, made<make_exact_rule>},
+    {error_recipe, made<make_error_rule>},           {latency_recipe, made<make_latency_rule>},
+    {response_recipe, made<make_response_rule>},     {tone_recipe, made<make_tone_rule>},
+    {transition_recipe, made<make_transition_rule>}, {noise_recipe, made<make_noise_rule>},
+    {silence_recipe, made<make_silence_rule>},       {drift_recipe, made<make_drift_rule>},
+    {unchanged_recipe, made<make_unchanged_rule>},   {exact_recipe, made<make_exact_rule>},
+    {deadline_recipe, made<make_deadline_rule>},     {crosstalk_recipe, made<make_crosstalk_rule>},
+    {headroom_recipe, made<make_headroom_rule>},
 };
 static_assert(std::size(kinds) == std::variant_size_v<decltype(Rule::kind)>);
 
@@ -60,6 +58,11 @@ const std::vector<Recipe>& rule_recipes() {
 }
 
 std::string_view kind_name(const Rule& rule) { return kinds[rule.kind.index()].recipe().name; }
+
+bool needs_reference(std::string_view kind) {
+    constexpr std::string_view without[] = {"unchanged", "deadline"};
+    return std::find(std::begin(without), std::end(without), kind) == std::end(without);
+}
 
 Outcome<Rule> make_rule(std::string_view kind, const ParameterValues& values, const RuleContext& context) {
     for (const RuleKind& known : kinds) {

@@ -9,9 +9,12 @@
 #include <variant>
 #include <vector>
 
+#include "oracle/rules/crosstalk_rule.hpp"
+#include "oracle/rules/deadline_rule.hpp"
 #include "oracle/rules/drift_rule.hpp"
 #include "oracle/rules/error_rule.hpp"
 #include "oracle/rules/exact_rule.hpp"
+#include "oracle/rules/headroom_rule.hpp"
 #include "oracle/rules/latency_rule.hpp"
 #include "oracle/rules/noise_rule.hpp"
 #include "oracle/rules/plan_position.hpp"
@@ -26,7 +29,7 @@ namespace halflsb {
 
 struct Rule {
     std::variant<ErrorRule, LatencyRule, ResponseRule, ToneRule, TransitionRule, NoiseRule, SilenceRule, DriftRule,
-                 UnchangedRule, ExactRule>
+                 UnchangedRule, ExactRule, DeadlineRule, CrosstalkRule, HeadroomRule>
         kind;
     PlanPosition position;
 };
@@ -34,6 +37,8 @@ struct Rule {
 /// In the order of the variant.
 const std::vector<Recipe>& rule_recipes();
 std::string_view kind_name(const Rule& rule);
+/// Whether it is held against what the filter should return; else it holds for a filter that nobody documented too.
+bool needs_reference(std::string_view kind);
 
 /// An Error's place is the name of the parameter to blame. Bands arrive as rows of
 /// {from_hz, to_hz, min_db or -inf, max_db or +inf}.

@@ -294,7 +294,7 @@ TEST_CASE("plan: an unknown filter is held to its baseline alone", "[config]") {
 
 TEST_CASE("plan: rules that need a reference are refused for an unknown filter", "[config]") {
     const std::string remedy =
-        "kind = \"unchanged\" holds without one; or say in [[filter]] what the firmware computes";
+        "kinds \"unchanged\" and \"deadline\" hold without one; or say in [[filter]] what the firmware computes";
     for (const std::string rule : {"error\"\nmax_lsb = 1", "latency\"\nlatency_samples = 0",
                                    "response\"\nbands = [{ from_hz = 1, to_hz = 9, max_db = 1 }]"}) {
         const std::string kind = rule.substr(0, rule.find('"'));
