@@ -140,6 +140,23 @@ void account_for(RunResult& run, const std::vector<std::string>& missing, const 
     }
 }
 
+/// What the run kept of the board's ticks; a run without them leaves the rules that want them undecided.
+Outcome<void> add_recorded_ticks(const RecordedRun& record, const Case& the_case, const CaseResult& result,
+                                 const Files& files, CaseJudge& judge) {
+    if (!wants_ticks(the_case) || result.ticks_file.empty()) return {};
+    const auto path = path_inside(files, record.folder, result.ticks_file);
+    if (!path) return path.error();
+    auto kept = CaptureFile::open(files, *path, record.path_of(result.ticks_file), format_of_ticks(), columns_of_ticks);
+    if (!kept) return kept.error();
+    std::vector<Code> codes;
+    for (std::int64_t first = 0; first < kept->samples(); first += block_samples) {
+        codes.resize(static_cast<std::size_t>(std::min(block_samples, kept->samples() - first) * columns_of_ticks));
+        if (auto read = kept->read(first, codes); !read) return read.error();
+        judge.add_ticks({record.run.board.tick_hz, record.run.board.tick_bits}, ticks_of_codes(codes));
+    }
+    return {};
+}
+
 }  // namespace
 
 Outcome<std::vector<std::size_t>> recorded_cases(const RecordedRun& record, const Plan& plan) {
@@ -232,6 +249,7 @@ Outcome<CaseResult> judge_capture(const RecordedRun& record, const Plan& plan, c
         if (auto read = capture->read(first, codes); !read) return read.error();
         judge.add(codes);
     }
+    if (auto added = add_recorded_ticks(record, the_case, result, files, judge); !added) return added.error();
     if (ended_early && !judge.is_decided()) {
         return Error{ErrorKind::input, to_text(the_case.position),
                      "case '" + printable(the_case.name) + "': " + counted(length, "sample was", "samples were") +

@@ -8,6 +8,7 @@
 #include "oracle/judge/case_judge.hpp"
 #include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/companion_case.hpp"
+#include "oracle/measure/log_histogram.hpp"
 #include "runner/case_cost.hpp"
 #include "runner/world/interrupt.hpp"
 #include "runner/world/sha256.hpp"
@@ -107,6 +108,36 @@ Passage flush_of(const CaseStage& stage) {
             [](std::int64_t room) { return room; }};
 }
 
+std::vector<BlockTicks> ticks_of(const std::vector<AnsweredBlock>& blocks) {
+    std::vector<BlockTicks> ticks;
+    for (const AnsweredBlock& block : blocks) ticks.push_back({block.samples, block.ticks_total, block.ticks_largest});
+    return ticks;
+}
+
+/// How long blocks took, on the board and there and back.
+class BlockTimes {
+public:
+    void add(const std::vector<AnsweredBlock>& blocks) {
+        for (const AnsweredBlock& block : blocks) {
+            if (block.samples <= 0) continue;
+            ticks_.add(static_cast<double>(block.ticks_total) / static_cast<double>(block.samples));
+            round_trip_s_.add(std::max(to_seconds(block.round_trip), 0.0));
+        }
+    }
+    void tell(StreamFacts& facts) const {
+        facts.round_trip_s = told(round_trip_s_);
+        if (ticks_.count() > 0 && ticks_.largest() > 0.0) facts.ticks_per_sample = told(ticks_);
+    }
+
+private:
+    static std::optional<Spread> told(const LogHistogram& of) {
+        if (of.count() == 0) return std::nullopt;
+        return Spread{judged(of.quantile(0.5)), judged(of.quantile(0.99)), judged(of.largest())};
+    }
+
+    LogHistogram ticks_, round_trip_s_;
+};
+
 /// Streams the whole case. An Error of kind bench leaves what came until then recorded and judged by
 /// nobody.
 Outcome<void> stream(const CaseStage& stage, CaseJudge& judge, CaseResult& result) {
@@ -115,22 +146,29 @@ Outcome<void> stream(const CaseStage& stage, CaseJudge& judge, CaseResult& resul
     if (auto flushed = streaming.pass(flush_of(stage)); !flushed) return flushed.error();
 
     const auto digest = make_code_digest();
-    const Passage stimulus{stage.the_case.stimulus->length_samples(),
-                           [&](std::int64_t first_index, std::span<Code> codes) -> Outcome<void> {
-                               fill_case_codes(stage.plan, stage.the_case, first_index, codes);
-                               digest->add(stage.plan.signal.input, codes);
-                               return stage.sent != nullptr ? stage.sent->append(codes) : Outcome<void>();
-                           },
-                           [&](const Received& received) {
-                               result.stream.ticks_total += received.ticks_total;
-                               result.stream.ticks_largest =
-                                   std::max(result.stream.ticks_largest, received.ticks_largest);
-                               return stage.recorder.append(received.samples);
-                           },
-                           [&](std::span<const Code> response) { judge.add(response); },
-                           [&] { return judge.is_decided(); },
-                           [&](std::int64_t room) { return sent_block_samples(stage.the_case, room); }};
+    BlockTimes times;
+    const Passage stimulus{
+        stage.the_case.stimulus->length_samples(),
+        [&](std::int64_t first_index, std::span<Code> codes) -> Outcome<void> {
+            fill_case_codes(stage.plan, stage.the_case, first_index, codes);
+            digest->add(stage.plan.signal.input, codes);
+            return stage.sent != nullptr ? stage.sent->append(codes) : Outcome<void>();
+        },
+        [&](const Received& received) -> Outcome<void> {
+            result.stream.ticks_total += received.ticks_total;
+            result.stream.ticks_largest = std::max(result.stream.ticks_largest, received.ticks_largest);
+            times.add(received.blocks);
+            if (stage.ticks != nullptr) {
+                const std::vector<BlockTicks> ticks = ticks_of(received.blocks);
+                if (auto kept = stage.ticks->append(codes_of_ticks(ticks)); !kept) return kept;
+                judge.add_ticks(stage.tick_counter, ticks);
+            }
+            return stage.recorder.append(received.samples);
+        },
+        [&](std::span<const Code> response) { judge.add(response); }, [&] { return judge.is_decided(); },
+        [&](std::int64_t room) { return sent_block_samples(stage.the_case, room); }};
     const auto passed = streaming.pass(stimulus);
+    times.tell(result.stream);
     if (!passed) return passed.error();
     result.stimulus.samples = *passed;
     result.stimulus.sha256 = digest->value();

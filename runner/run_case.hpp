@@ -4,6 +4,7 @@
 #include <string>
 
 #include "oracle/judge/base_response.hpp"
+#include "oracle/judge/block_ticks.hpp"
 #include "oracle/judge/plan.hpp"
 #include "oracle/judge/plots.hpp"
 #include "runner/board_settings.hpp"
@@ -30,6 +31,8 @@ struct CaseStage {
     RunObserver& observer;
     BaseResponse base = {};      ///< of a companion
     CasePlots* plots = nullptr;  ///< receives what a person wants to see of it; nullptr: nothing is wanted
+    TickCounter tick_counter = {};
+    Recorder* ticks = nullptr;  ///< keeps the board's ticks (block_ticks.hpp); nullptr where no rule asks for them
 };
 
 /// Fills everything but names of files, their hashes and earlier attempts. A bench error makes the case invalid,

@@ -43,6 +43,7 @@ CaseJudge::CaseJudge(const Plan& plan, const Case& the_case, bool wants_plots, B
     }
     for (const Rule& rule : the_case.rules) {
         if (std::holds_alternative<UnchangedRule>(rule.kind)) unchanged_.emplace_back(plan, the_case, rule);
+        if (std::holds_alternative<DeadlineRule>(rule.kind)) deadlines_.emplace_back(plan, the_case, rule);
     }
 }
 
@@ -61,6 +62,10 @@ void CaseJudge::add(std::span<const Code> response) {
     const std::size_t whole = response.size() / cycle * cycle;
     add_cycles(response.first(whole));
     waiting_.assign(response.begin() + static_cast<std::ptrdiff_t>(whole), response.end());
+}
+
+void CaseJudge::add_ticks(const TickCounter& counter, std::span<const BlockTicks> blocks) {
+    for (DeadlineJudge& judge : deadlines_) judge.add(counter, blocks);
 }
 
 void CaseJudge::add_cycles(std::span<const Code> response) {
@@ -138,11 +143,14 @@ Outcome<CaseJudgement> CaseJudge::finish(const ResponseReplay& replay) {
     judgement.latency_told =
         std::any_of(channels_.begin(), channels_.end(), [](const ChannelJudge& judge) { return judge.latency_told(); });
     auto unchanged = unchanged_.begin();
+    auto deadline = deadlines_.begin();
     for (const Rule& rule : case_.rules) {
         if (std::holds_alternative<UnchangedRule>(rule.kind)) {
             judgement.rules.push_back((unchanged++)->verdict());
         } else if (!companions_of(rule).empty()) {
             if (!companion_) judgement.rules.push_back(without_companions(rule));
+        } else if (std::holds_alternative<DeadlineRule>(rule.kind)) {
+            judgement.rules.push_back((deadline++)->verdict());
         } else if (plan_.filter_is_unknown) {
             if (!is_implicit_latency(rule)) judgement.rules.push_back(without_reference(rule));
         } else {

@@ -10,6 +10,7 @@
 #include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/channel_judge.hpp"
 #include "oracle/judge/companion_judge.hpp"
+#include "oracle/judge/deadline_judge.hpp"
 #include "oracle/judge/latency_evidence.hpp"
 #include "oracle/judge/plan.hpp"
 #include "oracle/judge/plots.hpp"
@@ -21,9 +22,9 @@
 namespace halflsb {
 
 struct CaseJudgement {
-    /// In the order of the case, and for each rule in that of the channels; `unchanged` is judged over all channels
-    /// at once, and so is a companion. Left out: a response or latency rule on a channel that is not driven, an
-    /// implicit latency rule where a channel could not tell.
+    /// In the order of the case, and for each rule in that of the channels; `unchanged` and `deadline` are judged over
+    /// all channels at once, and so is a companion. Left out: a response or latency rule on a channel that is not
+    /// driven, an implicit latency rule where a channel could not tell.
     std::vector<RuleVerdict> rules;
     bool latency_told = false;  ///< by some channel
     CasePlots plots;            ///< channel by channel; none where the judge was not to make any
@@ -37,6 +38,8 @@ public:
     /// The next response samples, in order from instant 0: whole instants, a code a channel, adjacent. Where the rate
     /// changes, those of a rate cycle that is not whole yet wait for the rest of it.
     void add(std::span<const Code> response);
+    /// What the board says of the time that the next blocks took; only where some rule asks (wants_ticks).
+    void add_ticks(const TickCounter& counter, std::span<const BlockTicks> blocks);
     /// No verdict changes with what may follow: nothing more need be sent.
     bool is_decided() const;
     /// After the last sample; only once. `replay` is asked only when some channel's response fits better at
@@ -59,6 +62,7 @@ private:
     std::optional<CompanionJudge> companion_;
     std::optional<Error> base_unread_;
     std::vector<UnchangedJudge> unchanged_;
+    std::vector<DeadlineJudge> deadlines_;
     std::vector<TimeTrace> traces_;                ///< of each channel where no judge has one and plots are wanted
     std::int64_t sent_samples_ = 0, samples_ = 0;  ///< instants; of the response those that were looked at
     std::vector<Code> waiting_;                    ///< of the response, the rest

@@ -4,9 +4,12 @@
 
 #include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/companion_judge.hpp"
+#include "oracle/judge/crosstalk_judge.hpp"
+#include "oracle/judge/deadline_judge.hpp"
 #include "oracle/judge/drift_judge.hpp"
 #include "oracle/judge/error_judge.hpp"
 #include "oracle/judge/exact_judge.hpp"
+#include "oracle/judge/headroom_judge.hpp"
 #include "oracle/judge/latency_check.hpp"
 #include "oracle/judge/latency_fraction.hpp"
 #include "oracle/judge/noise_judge.hpp"
@@ -31,6 +34,8 @@ template <AsksForCompanions Kind>
 std::unique_ptr<RuleJudge> make_judge(const Kind&, const Rule&, const JudgedChannel&) {
     return nullptr;
 }
+WantedReferences wanted_by(const DeadlineRule&, bool) { return {}; }
+std::unique_ptr<RuleJudge> make_judge(const DeadlineRule&, const Rule&, const JudgedChannel&) { return nullptr; }
 
 }  // namespace
 

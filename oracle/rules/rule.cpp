@@ -1,5 +1,6 @@
 #include "oracle/rules/rule.hpp"
 
+#include <algorithm>
 #include <utility>
 
 namespace halflsb {
@@ -35,6 +36,9 @@ constexpr RuleKind kinds[] = {
     {blocks_recipe, made<make_blocks_rule>},
     {shift_recipe, made<make_shift_rule>},
     {linearity_recipe, made<make_linearity_rule>},
+    {deadline_recipe, made<make_deadline_rule>},
+    {crosstalk_recipe, made<make_crosstalk_rule>},
+    {headroom_recipe, made<make_headroom_rule>},
 };
 static_assert(std::size(kinds) == std::variant_size_v<decltype(Rule::kind)>);
 

@@ -11,9 +11,12 @@
 #include <vector>
 
 #include "oracle/rules/companion_rules.hpp"
+#include "oracle/rules/crosstalk_rule.hpp"
+#include "oracle/rules/deadline_rule.hpp"
 #include "oracle/rules/drift_rule.hpp"
 #include "oracle/rules/error_rule.hpp"
 #include "oracle/rules/exact_rule.hpp"
+#include "oracle/rules/headroom_rule.hpp"
 #include "oracle/rules/latency_rule.hpp"
 #include "oracle/rules/noise_rule.hpp"
 #include "oracle/rules/plan_position.hpp"
@@ -28,8 +31,9 @@ namespace halflsb {
 
 struct Rule {
     std::variant<ErrorRule, LatencyRule, ResponseRule, ToneRule, TransitionRule, NoiseRule, SilenceRule, DriftRule,
-                 UnchangedRule, ExactRule,  //
-                 RepeatRule, BlocksRule, ShiftRule, LinearityRule>
+                 UnchangedRule, ExactRule,                        //
+                 RepeatRule, BlocksRule, ShiftRule, LinearityRule,  //
+                 DeadlineRule, CrosstalkRule, HeadroomRule>
         kind;
     PlanPosition position;
 };

@@ -222,6 +222,7 @@ private:
         const Words quiet = placed("silence", memory_ + 64);
         add("hardest for " + node, "the input that drives it the furthest, at full and at half scale",
             sequence({pattern(1.0), quiet, pattern(0.5), quiet}));
+        if (signal_.output.has_lsb()) text_ += "[[case.rule]]\nkind = \"headroom\"\n\n";
     }
 
     void add_tail() {
@@ -243,6 +244,7 @@ private:
         for (int channel = 1; channel <= signal_.channels; ++channel) {
             add("channel " + std::to_string(channel) + " alone", "channels that are exchanged or leak into each other",
                 at_level(placed("noise", 8192 + memory_), quiet_level()).add("channel", std::int64_t{channel}));
+            text_ += "[[case.rule]]\nkind = \"crosstalk\"\nmax_" + limit_unit() + " = \"derived\"\n\n";
         }
     }
 

@@ -78,6 +78,13 @@ std::optional<Companion> read_companion(const JsonField& field) {
     return companion;
 }
 
+/// Records of before have none.
+std::optional<Spread> read_spread(const JsonField& stream, const char* key) {
+    const JsonField field = stream.at_or_null(key);
+    if (field.is_null()) return std::nullopt;
+    return Spread{field.at("median").number(), field.at("percentile_99").number(), field.at("largest").number()};
+}
+
 CaseResult read_case(const JsonField& field) {
     CaseResult result;
     result.number = static_cast<std::size_t>(field.at("number").whole(1, most_cases));
@@ -100,6 +107,8 @@ CaseResult read_case(const JsonField& field) {
     result.stream.samples_sent = stream.at("sent_samples").whole(0, most_samples);
     result.stream.samples_received = stream.at("received_samples").whole(0, most_samples);
     result.stream.frames_bad_at_host = stream.at("bad_frames_at_host").whole(0, most_samples);
+    result.stream.ticks_per_sample = read_spread(stream, "ticks_per_sample");
+    result.stream.round_trip_s = read_spread(stream, "round_trip_s");
     result.stream.resends = stream.at("resends").whole(0, most_samples);
     const auto counter = [&](const char* key) -> std::optional<std::uint32_t> {
         const JsonField count = stream.at(key);
@@ -112,6 +121,7 @@ CaseResult read_case(const JsonField& field) {
     result.started_utc = field.at("started_utc").text_or_empty();
     result.elapsed_s = field.at("elapsed_s").number_or_none().value_or(0.0);
     read_capture(field.at("capture"), result.capture_file, result.capture_sha256);
+    if (!field.at_or_null("ticks").is_null()) read_capture(field.at("ticks"), result.ticks_file, result.ticks_sha256);
     field.at("attempts").each([&](const JsonField& attempt) {
         AttemptResult made;
         if (auto invalid = read_error(attempt.at("invalid"))) made.invalid = *invalid;
@@ -152,6 +162,7 @@ void read_board(const JsonField& field, BoardFacts& board) {
     board.block_samples = static_cast<int>(field.at("block_samples").whole(0, most));
     board.credit_blocks = static_cast<int>(field.at("credit_blocks").whole(0, most));
     board.tick_hz = static_cast<std::uint32_t>(field.at("tick_hz").whole(0, std::numeric_limits<std::uint32_t>::max()));
+    if (!field.at_or_null("tick_bits").is_null()) board.tick_bits = static_cast<int>(field.at("tick_bits").whole(0, 255));
 }
 
 /// "u12, left-justified" without the layout.

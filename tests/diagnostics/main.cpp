@@ -30,5 +30,6 @@ int main() {
     judge_chapter(page);
     verdict_chapter(page);
     companion_chapter(page);
+    device_chapter(page);
     return page.is_complete() ? 0 : 1;
 }

@@ -117,6 +117,7 @@ public:
         silence(totals);
         loud(totals);
         again(totals);
+        hardest(totals);
     }
 
 private:
@@ -193,6 +194,19 @@ private:
         SilenceRule rule;
         rule.largest = Limit{0.0, Limit::In::full_scale_ratio, true};
         judge(the_case, board_.respond(board_.plan, the_case), {rule}, totals);
+    }
+
+    /// The signs that drive the output the furthest.
+    void hardest(Totals& totals) {
+        const Signal& signal = board_.plan.signal;
+        if (!is_plain_ || !signal.input.has_lsb() || !signal.output.has_lsb()) return;
+        std::string signs;
+        const std::vector<double> h = impulse_response(chain_of_channel(board_.plan.filter, 1), 1024);
+        for (std::size_t n = h.size(); n-- > 0;) signs += h[n] < 0.0 ? '-' : h[n] > 0.0 ? '+' : '0';
+        const Case the_case = made("signs", values({{"signs", signs},
+                                                    {"level_ratio", chance(random_, 50) ? 1.0 : -1.0},
+                                                    {"length_samples", random_.whole(1100, 2000)}}));
+        judge(the_case, board_.respond(board_.plan, the_case), {HeadroomRule{}}, totals);
     }
 
     /// Whatever overflows then: the limits that claim nothing must say so.
@@ -311,7 +325,7 @@ TEST_CASE("none of a hundred fails any rule", "[rigs]") {
     // All of it must have happened.
     if (!draws_all_rounds()) return;
     for (const char* kind : {"error", "exact", "latency", "response", "noise", "drift", "tone", "transition", "silence",
-                             "repeat", "blocks", "shift", "linearity"}) {
+                             "repeat", "blocks", "shift", "linearity", "headroom"}) {
         CAPTURE(kind);
         CHECK(totals.judged(kind) > 0);
     }

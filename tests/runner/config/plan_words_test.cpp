@@ -294,7 +294,7 @@ TEST_CASE("plan: an unknown filter is held to its baseline alone", "[config]") {
 
 TEST_CASE("plan: rules that need a reference are refused for an unknown filter", "[config]") {
     const std::string remedy =
-        "rules of kind \"unchanged\", \"repeat\", \"blocks\", \"shift\" or \"linearity\" hold without one; or say in "
+        "rules of kind \"unchanged\", \"repeat\", \"blocks\", \"shift\", \"linearity\" or \"deadline\" hold without one; or say in "
         "[[filter]] what the firmware computes";
     for (const std::string rule : {"error\"\nmax_lsb = 1", "latency\"\nlatency_samples = 0",
                                    "response\"\nbands = [{ from_hz = 1, to_hz = 9, max_db = 1 }]"}) {
