@@ -1,11 +1,11 @@
 #include "oracle/explain/open_words.hpp"
 
 #include <algorithm>
-#include <cmath>
 #include <utility>
 
 #include "oracle/arithmetic/described.hpp"
 #include "oracle/explain/coefficient_changes.hpp"
+#include "oracle/explain/stored_coefficients.hpp"
 
 namespace halflsb {
 namespace {
@@ -26,24 +26,6 @@ constexpr std::pair<Rounding, double> coefficient_roundings[] = {{Rounding::half
                                                                  {Rounding::half_even, 4.0}};
 
 void leave_out(FilterStage&) {}
-
-double largest_coefficient(const FilterDesign& design) {
-    double largest = 0.0;
-    const auto look = [&](const std::vector<double>& list) {
-        for (const double c : list) largest = std::max(largest, std::fabs(c));
-    };
-    if (const auto* fir = std::get_if<Fir>(&design)) look(fir->taps);
-    if (const auto* fewer = std::get_if<FirDecimator>(&design)) look(fewer->taps);
-    if (const auto* more = std::get_if<FirInterpolator>(&design)) look(more->taps);
-    if (const auto* comb = std::get_if<Comb>(&design)) look({comb->direct, comb->forward, comb->feedback});
-    if (const auto* recursion = std::get_if<Recursion>(&design)) {
-        look(recursion->b);
-        look(recursion->a);
-    }
-    if (const auto* cascade = std::get_if<BiquadCascade>(&design))
-        for (const BiquadSection& s : cascade->sections) look({s.b0, s.b1, s.b2, s.a1, s.a2});
-    return largest;
-}
 
 class StageWords {
 public:
@@ -105,13 +87,8 @@ private:
         if (described_.coefficients_are_said) {
             stored.push_back({std::nullopt, 0.0});
         } else {
-            const double largest = largest_coefficient(chain_[stage_].design);
-            const int whole = largest < 1.0 ? 0 : static_cast<int>(std::floor(std::log2(largest))) + 1;
-            for (int bits = 4; bits <= 32; ++bits) {
-                const bool fills_word = bits + whole == 15 || bits + whole == 31;
-                const bool is_usual = bits == 14 || bits == 15 || bits == 30 || bits == 31;
-                stored.push_back({bits, fills_word ? 1.0 : is_usual ? 1.5 : 4.0});
-            }
+            for (const StoredCoefficients& each : ways_to_store(chain_[stage_].design))
+                stored.push_back({each.fraction_bits, each.price_bits});
         }
         std::vector<WordChoice> choices;
         for (const auto& [bits, bits_price] : stored) {
