@@ -213,6 +213,7 @@ BoardFacts facts_of(const Board& board, const Rig& rig) {
     facts.credit_blocks = board.greeting.credit_blocks;
     facts.channels = filter.channels_out;
     facts.tick_hz = board.greeting.tick_hz;
+    facts.tick_bits = board.greeting.tick_bits;
     return facts;
 }
 

@@ -4,28 +4,13 @@
 #include <cmath>
 
 #include "oracle/arithmetic/cic_registers.hpp"
+#include "oracle/arithmetic/every_word.hpp"
 #include "oracle/arithmetic/named_coefficients.hpp"
 #include "oracle/arithmetic/node_impulse.hpp"
 #include "oracle/filters/cic.hpp"
 
 namespace halflsb {
 namespace {
-
-/// Wider than any node comes to, and a word all the same: RailWatch tells of nodes that have one.
-constexpr int any_bits = wide_bits - 1;
-
-DescribedChain with_every_word(DescribedChain chain) {
-    for (DescribedStage& stage : chain.stages) {
-        if (stage.accumulator_bits == wide_bits) stage.accumulator_bits = any_bits;
-        // Registers of a CIC that wrap are told for themselves.
-        const bool is_wrapping_cic =
-            std::holds_alternative<CicDecimator>(stage.stage.design) && stage.state.overflow == Overflow::wrap;
-        if (stage.state.bits == wide_bits && !is_wrapping_cic) stage.state.bits = any_bits;
-        if (!stage.out.is_float && stage.out.word.bits == wide_bits) stage.out.word.bits = any_bits;
-        if (!stage.in.is_float && stage.in.word.bits == wide_bits) stage.in.word.bits = any_bits;
-    }
-    return chain;
-}
 
 /// Whole steps from lowest to highest; none beyond any word.
 std::optional<int> bits_for(double lowest, double highest) {

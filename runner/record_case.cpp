@@ -2,6 +2,8 @@
 
 #include <spdlog/spdlog.h>
 
+#include "oracle/judge/deadline_judge.hpp"
+#include "runner/base_capture.hpp"
 #include "runner/run_case.hpp"
 #include "runner/world/sha256.hpp"
 
@@ -30,6 +32,30 @@ Outcome<std::optional<Recorder>> open_sent(const RunDesk& desk, const Case& the_
     return recorder;
 }
 
+/// "ticks/003-tare-step.npy" beside "captures/003-tare-step.npy".
+std::string ticks_file_name(const std::string& capture_file) {
+    return "ticks" + capture_file.substr(capture_file.find('/'));
+}
+
+Outcome<std::optional<Recorder>> open_ticks(const RunDesk& desk, const Case& the_case, const std::string& file) {
+    std::optional<Recorder> recorder;
+    if (!wants_ticks(the_case)) return recorder;
+    if (auto made = desk.files.make_directories(desk.folder.path_of("ticks")); !made) return made.error();
+    auto opened = Recorder::open(desk.files, desk.folder.path_of(file), format_of_ticks(), columns_of_ticks);
+    if (!opened) return opened.error();
+    recorder.emplace(std::move(*opened));
+    return recorder;
+}
+
+Outcome<void> keep_ticks(const RunDesk& desk, Recorder& recorder, const std::string& file, CaseResult& result) {
+    if (auto kept = recorder.finish(); !kept) return kept;
+    auto hash = sha256_of_file(desk.folder.path_of(file));
+    if (!hash) return hash.error();
+    result.ticks_file = file;
+    result.ticks_sha256 = *hash;
+    return {};
+}
+
 /// Names the capture, or leaves none behind when nothing came.
 Outcome<void> keep_capture(const RunDesk& desk, Recorder& recorder, const std::string& file, CaseResult& result) {
     if (recorder.samples() == 0) {
@@ -44,6 +70,22 @@ Outcome<void> keep_capture(const RunDesk& desk, Recorder& recorder, const std::s
     result.capture_file = file;
     result.capture_sha256 = *hash;
     return {};
+}
+
+/// What a companion is held against: the capture of a case before it in this run.
+Outcome<BaseResponse> base_of(const RunDesk& desk, const Case& the_case) {
+    if (!the_case.companion) return BaseResponse{};
+    const CaseResult* const base = result_named(desk.run.cases, the_case.companion->base);
+    const std::string path = base == nullptr ? "" : desk.folder.path_of(base->capture_file);
+    auto response =
+        base_response(the_case, base, path, path, desk.plan.signal, desk.run.board.block_samples, desk.files);
+    // This run has just written it.
+    if (!response) {
+        Error error = response.error();
+        error.kind = ErrorKind::output;
+        return error;
+    }
+    return response;
 }
 
 struct Attempt {
@@ -71,16 +113,23 @@ Outcome<Attempt> run_attempt(const RunDesk& desk, std::size_t index, std::size_t
     auto recorder =
         Recorder::open(desk.files, desk.folder.path_of(file), desk.plan.signal.output, desk.plan.signal.channels);
     if (!recorder) return recorder.error();
+    auto base = base_of(desk, the_case);
+    if (!base) return base.error();
     const std::string stimulus_file = stimulus_file_name(file);
     auto sent = open_sent(desk, the_case, stimulus_file);
     if (!sent) return sent.error();
+    const std::string ticks_file = ticks_file_name(file);
+    auto ticks = open_ticks(desk, the_case, ticks_file);
+    if (!ticks) return ticks.error();
+    Recorder* const keeps_ticks = *ticks ? &**ticks : nullptr;
     Recorder* const keeps_sent = *sent ? &**sent : nullptr;
 
     CasePlots plots;
     // A recorder that is not finished leaves nothing behind.
-    auto result =
-        run_case({desk.plan, the_case, index + 1, place, desk.board.filter_number, *desk.board.wire,
-                  desk.board.link->baud(), desk.settings, *recorder, keeps_sent, desk.clock, desk.observer, &plots});
+    const TickCounter counter{desk.board.greeting.tick_hz, desk.board.greeting.tick_bits};
+    auto result = run_case({desk.plan, the_case, index + 1, place, desk.board.filter_number, *desk.board.wire,
+                            desk.board.link->baud(), desk.settings, *recorder, keeps_sent, desk.clock, desk.observer,
+                            std::move(*base), &plots, counter, keeps_ticks});
     if (!result) return result.error();
     Attempt made{{std::move(*result), std::nullopt, std::move(plots)}};
     if (auto decided = decide_on_another(desk, attempt, made); !decided) return decided.error();
@@ -91,6 +140,9 @@ Outcome<Attempt> run_attempt(const RunDesk& desk, std::size_t index, std::size_t
     if (keeps_sent != nullptr && !facts.stimulus.sha256.empty()) {
         if (auto kept = keeps_sent->finish(); !kept) return kept.error();
         facts.stimulus.file = stimulus_file;
+    }
+    if (keeps_ticks != nullptr && facts.verdict != CaseVerdict::invalid) {
+        if (auto kept = keep_ticks(desk, *keeps_ticks, ticks_file, facts); !kept) return kept.error();
     }
     return made;
 }

@@ -17,6 +17,7 @@ double quantile(double probability, double degrees) {
 
 bool is_uncertain(const Rule& rule) {
     if (const auto* latency = std::get_if<LatencyRule>(&rule.kind)) return latency->max_fraction_samples.has_value();
+    if (const auto* crosstalk = std::get_if<CrosstalkRule>(&rule.kind)) return crosstalk->max_db.has_value();
     return std::visit([](const auto& kind) { return !kind.is_exact; }, rule.kind);
 }
 

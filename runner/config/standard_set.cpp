@@ -72,6 +72,7 @@ public:
         add_after_loud();
         add_full_scale();
         add_tail();
+        add_again();
         add_channels();
         add_levels();
         add_long_run();
@@ -221,6 +222,7 @@ private:
         const Words quiet = placed("silence", memory_ + 64);
         add("hardest for " + node, "the input that drives it the furthest, at full and at half scale",
             sequence({pattern(1.0), quiet, pattern(0.5), quiet}));
+        if (signal_.output.has_lsb()) text_ += "[[case.rule]]\nkind = \"headroom\"\n\n";
     }
 
     void add_tail() {
@@ -229,11 +231,20 @@ private:
                    sequence({at_level(placed("noise", loud), quiet_level()), placed("silence", 2 * memory_ + 512)}));
     }
 
+    /// Short: it travels three times in all, once of them in many small frames. 7 samples divide no block that a board
+    /// is likely to take.
+    void add_again() {
+        add("noise, sent again", "the response that the next two are compared with",
+            at_level(placed("noise", memory_ + 1024), quiet_level()));
+        text_ += "[[case.rule]]\nkind = \"repeat\"\n[[case.rule]]\nkind = \"blocks\"\nblock_samples = [7]\n\n";
+    }
+
     void add_channels() {
         if (signal_.channels < 2) return;
         for (int channel = 1; channel <= signal_.channels; ++channel) {
             add("channel " + std::to_string(channel) + " alone", "channels that are exchanged or leak into each other",
                 at_level(placed("noise", 8192 + memory_), quiet_level()).add("channel", std::int64_t{channel}));
+            text_ += "[[case.rule]]\nkind = \"crosstalk\"\nmax_" + limit_unit() + " = \"derived\"\n\n";
         }
     }
 

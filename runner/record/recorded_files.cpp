@@ -106,6 +106,9 @@ Outcome<void> check_recorded_files(const RecordedRun& record, const Files& files
         if (!result.capture_file.empty()) {
             if (auto same = check_file(record, files, result.capture_file, result.capture_sha256); !same) return same;
         }
+        if (!result.ticks_file.empty()) {
+            if (auto same = check_file(record, files, result.ticks_file, result.ticks_sha256); !same) return same;
+        }
         if (!result.stimulus.file.empty()) {
             if (auto same = check_stimulus(record, files, result); !same) return same;
         }

@@ -22,7 +22,8 @@ Json board_json(const BoardFacts& board) {
             {"channels", board.channels},
             {"block_samples", board.block_samples},
             {"credit_blocks", board.credit_blocks},
-            {"tick_hz", board.tick_hz}};
+            {"tick_hz", board.tick_hz},
+            {"tick_bits", board.tick_bits}};
 }
 
 Json firmware_json(const FirmwareCheck& firmware) {
@@ -83,6 +84,13 @@ Json rule_json(const RuleVerdict& verdict, const Signal& signal) {
             {"first_bad", neighbourhood_json(verdict.first_bad, signal)}};
 }
 
+Json spread_json(const std::optional<Spread>& spread) {
+    if (!spread) return nullptr;
+    return {{"median", number_json(spread->median)},
+            {"percentile_99", number_json(spread->percentile_99)},
+            {"largest", number_json(spread->largest)}};
+}
+
 Json stream_json(const StreamFacts& stream) {
     return {{"sent_samples", stream.samples_sent},
             {"received_samples", stream.samples_received},
@@ -96,7 +104,9 @@ Json stream_json(const StreamFacts& stream) {
             {"streaming_s", number_json(stream.streaming_s)},
             {"line_use_ratio", number_json(stream.line_use_ratio)},
             {"total_ticks", stream.ticks_total},
-            {"largest_ticks_per_sample", stream.ticks_largest}};
+            {"largest_ticks_per_sample", stream.ticks_largest},
+            {"ticks_per_sample", spread_json(stream.ticks_per_sample)},
+            {"round_trip_s", spread_json(stream.round_trip_s)}};
 }
 
 /// What a rule came to; everything here follows from plan and captures.
@@ -125,6 +135,17 @@ Json attempt_json(const AttemptResult& attempt) {
             {"capture", capture_json(attempt.capture_file, attempt.capture_sha256)}};
 }
 
+/// The texts for people follow from the rest.
+Json companion_json(const std::optional<Companion>& companion) {
+    if (!companion) return nullptr;
+    Json terms = Json::array();
+    for (const CompanionTerm& term : companion->terms)
+        terms.push_back({{"gain", term.gain}, {"delay_samples", term.delay_samples}});
+    return {{"base", text_json(companion->base)},
+            {"terms", std::move(terms)},
+            {"block_samples", companion->block_samples > 0 ? Json(companion->block_samples) : Json(nullptr)}};
+}
+
 /// How a case was captured.
 Json case_json(const CaseResult& result) {
     const StimulusFacts& stimulus = result.stimulus;
@@ -142,11 +163,13 @@ Json case_json(const CaseResult& result) {
             {"rate_hz", number_json(result.rate_hz)},
             {"start", name_of(result.start)},
             {"start_samples", result.start_samples},
+            {"companion", companion_json(result.companion)},
             {"settings", std::move(settings)},
             {"stream", stream_json(result.stream)},
             {"started_utc", text_json(result.started_utc)},
             {"elapsed_s", number_json(result.elapsed_s)},
             {"capture", capture_json(result.capture_file, result.capture_sha256)},
+            {"ticks", capture_json(result.ticks_file, result.ticks_sha256)},
             {"attempts", std::move(attempts)},
             {"rerun", text_json(result.rerun)}};
 }

@@ -27,6 +27,8 @@ public:
 
     /// Of an object; a key that is not there is a problem.
     JsonField at(const char* key) const;
+    /// Of an object; null where the key is not there.
+    JsonField at_or_null(const char* key) const;
     bool is_null() const { return value_ == nullptr || value_->is_null(); }
     std::string text() const;
     /// "" for null.

@@ -98,6 +98,31 @@ std::string board_counters_text(const StreamFacts& stream) {
            counted(stream.gaps_at_board.value_or(0), "gap", "gaps");
 }
 
+/// Some rule is about time: of the others it would be a line that nobody asked for.
+bool is_about_time(const CaseResult& result) {
+    return std::any_of(result.rules.begin(), result.rules.end(), [](const RuleVerdict& verdict) {
+        const auto* latency = std::get_if<LatencyRule>(&verdict.rule.kind);
+        return std::holds_alternative<DeadlineRule>(verdict.rule.kind) || (latency != nullptr && !latency->implicit);
+    });
+}
+
+std::string spread_text(const Spread& spread, double scale, const std::string& unit) {
+    return "median " + rounded_text(spread.median * scale, 3) + ", 99 % " +
+           rounded_text(spread.percentile_99 * scale, 3) + ", most " + rounded_text(spread.largest * scale, 3) + unit;
+}
+
+/// What the blocks took, on the board and there and back.
+std::string time_text(const StreamFacts& stream) {
+    std::string text;
+    if (stream.ticks_per_sample)
+        text = "of a sample on the board " + spread_text(*stream.ticks_per_sample, 1.0, " ticks");
+    if (stream.round_trip_s) {
+        text +=
+            (text.empty() ? "" : "; ") + ("of a block there and back " + spread_text(*stream.round_trip_s, 1e3, " ms"));
+    }
+    return text;
+}
+
 std::string invalid_block(const CaseResult& result, const TextStyle& style) {
     std::string out;
     if (result.invalid) {
@@ -190,6 +215,8 @@ std::vector<std::pair<std::string, std::string>> capture_facts(const RunResult& 
         settings += (settings.empty() ? "" : ", ") + printable(setting.name) + " = " + std::to_string(setting.value);
     if (!settings.empty()) add("settings", settings);
     if (result.rate_hz) add("rate", rate_text(*result.rate_hz));
+    const std::string time = is_about_time(result) ? time_text(result.stream) : "";
+    if (!time.empty()) add("time", time);
     if (!result.attempts.empty()) {
         std::string attempts = "attempt " + std::to_string(result.attempts.size() + 1);
         if (run.attempts_allowed > 0) attempts += " of " + std::to_string(run.attempts_allowed);

@@ -21,9 +21,10 @@ std::size_t FramedSession::room_samples() const { return !error_ && window_.has_
 
 void FramedSession::queue(StreamWindow::Frame& frame, const message::Bytes& body) {
     append_frame(frame.bytes, static_cast<std::uint8_t>(frame.type), body);
+    frame.queued_at = clock_.now();
     if (window_.in_flight() > 1) return;
     // The first one in flight: from now on an answer is due.
-    last_good_ = progress_at_ = left_at_ = clock_.now();
+    last_good_ = progress_at_ = left_at_ = frame.queued_at;
     arrivals_.start_over();
 }
 
@@ -161,6 +162,8 @@ Outcome<void> FramedSession::take_response(message::BytesView body) {
     from_wire_bytes(filter_.output, response->words, std::span(ready_.samples).subspan(before));
     ready_.ticks_total += response->ticks_total;
     ready_.ticks_largest = std::max(ready_.ticks_largest, response->ticks_largest);
+    ready_.blocks.push_back(
+        {frame.samples, response->ticks_total, response->ticks_largest, clock_.now() - frame.queued_at});
     ready_.answered += frame.samples;
     received_samples_ += frame.returned;
     advance_window();

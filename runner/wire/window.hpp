@@ -1,5 +1,5 @@
 // The frames of a stream that are sent and not yet answered (docs/wire.md §3, Credit and Loss): numbers,
-// what each frame was, and its bytes for sending again. Knows no link and no time.
+// what each frame was, and its bytes for sending again. Knows no link and no clock.
 //
 // Frames are numbered from 0 without wrapping here; 16 bits of that number travel.
 #pragma once
@@ -11,6 +11,7 @@
 #include <vector>
 
 #include "runner/wire/messages.hpp"
+#include "runner/world/clock.hpp"
 
 namespace halflsb {
 
@@ -21,6 +22,7 @@ public:
         std::int64_t at = 0;        ///< sample index that it starts at, or takes effect before
         std::int64_t samples = 0;   ///< 0 for a command
         std::int64_t returned = 0;  ///< how many its answer must have
+        Instant queued_at{};        ///< when it was ready to go
         std::vector<std::byte> bytes;
     };
 

@@ -54,6 +54,13 @@ struct Greeting {
 /// How many instants have come back once so many were sent, counted from start() or the last reset.
 using ReturnedCount = std::function<std::int64_t(std::int64_t sent)>;
 
+/// The answer to one block.
+struct AnsweredBlock {
+    std::int64_t samples = 0;  ///< sent
+    std::uint32_t ticks_total = 0, ticks_largest = 0;
+    Duration round_trip{};  ///< from when the block was ready to go to when its answer was there
+};
+
 /// What one step of the stream brought, in order; samples may be empty.
 struct Received {
     std::int64_t first_index = 0;  ///< of the samples returned, counted from start()
@@ -61,6 +68,7 @@ struct Received {
     std::int64_t answered = 0;        ///< instants sent whose answers these are
     std::uint64_t ticks_total = 0;    ///< of those answered
     std::uint32_t ticks_largest = 0;  ///< of one sample
+    std::vector<AnsweredBlock> blocks;
 };
 
 /// The board's own counters, differences since start() or settle().

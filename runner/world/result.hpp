@@ -24,6 +24,7 @@ struct BoardFacts {
     int block_samples = 0, credit_blocks = 0;
     int channels = 1;
     std::uint32_t tick_hz = 0;
+    int tick_bits = 0;
 };
 
 /// Which firmware is this? Design 5.
@@ -32,6 +33,11 @@ struct FirmwareCheck {
     std::string image_file;           ///< of --image, "" without
     std::string image_build_id;       ///< "" without
     bool before_run_skipped = false;  ///< because the board already ran the image
+};
+
+/// Of something that each block has one of.
+struct Spread {
+    double median = 0.0, percentile_99 = 0.0, largest = 0.0;
 };
 
 /// How a case travelled.
@@ -46,6 +52,8 @@ struct StreamFacts {
     std::optional<double> line_use_ratio;
     std::uint64_t ticks_total = 0;    ///< of the stimulus, without the zeros of a flush
     std::uint32_t ticks_largest = 0;  ///< of one sample
+    /// Of the blocks of the stimulus; none where the board counts no ticks, or no block was answered.
+    std::optional<Spread> ticks_per_sample, round_trip_s;
 };
 
 /// What was sent, so that a later judge knows whether a plan still means it.
@@ -80,6 +88,7 @@ struct CaseResult {
     double elapsed_s = 0.0;
     std::string capture_file;  ///< below the run's folder; "" when nothing was captured
     std::string capture_sha256;
+    std::string ticks_file, ticks_sha256;  ///< of the board's ticks, where a rule asks for them; else ""
     StimulusFacts stimulus;
     Start start = Start::reset;
     std::int64_t start_samples = 0;  ///< as in Case
@@ -88,6 +97,8 @@ struct CaseResult {
     std::string rerun;                    ///< the command that repeats this case alone
     std::optional<double> rate_hz;        ///< of the case, where it is not the signal's
     double returned_per_sent = 1.0;       ///< rate of the response over that of the stimulus
+    /// It was held against another case's capture; read from a record without its texts for people.
+    std::optional<Companion> companion = {};
 };
 
 /// A case of the plan, and what it is there to find.
@@ -118,7 +129,7 @@ struct RunResult {
     BoardFacts board;
     FirmwareCheck firmware;
     TakenByItself taken;
-    bool may_end_early = false;  ///< some case may end before its stimulus does, once its rules are decided
+    bool may_end_early = false;              ///< some case may end before its stimulus does, once its rules are decided
     std::vector<std::string> cases_planned;  ///< names of the selected cases, in order
     std::vector<CaseResult> cases;           ///< those that ran
     std::vector<std::string> warnings;

@@ -16,6 +16,7 @@
 #include "oracle/arithmetic/twin.hpp"
 #include "oracle/judge/admission.hpp"
 #include "oracle/judge/case_judge.hpp"
+#include "oracle/judge/companion_case.hpp"
 #include "rigs/virtual-board/clean_decisions.hpp"
 #include "runner/config/plan_file.hpp"
 #include "runner/config/standard_set.hpp"
@@ -86,7 +87,8 @@ inline Returned firmware_returns(const board::FilterParts& parts, const Plan& pl
     parts.reset();
     for (std::size_t first = 0; first < length;) {
         // Whole rate cycles, as the runner sends.
-        const std::size_t count = std::min<std::size_t>(length - first, 240);
+        const auto most = static_cast<std::size_t>(parts.process_rate ? 240 : sent_block_samples(the_case, 240));
+        const std::size_t count = std::min(length - first, most);
         const auto codes = std::span(sent).subspan(first * channels, count * channels);
         std::vector<std::byte> in(codes.size() * in_format.word_bytes());
         std::vector<std::byte> out(codes.size() * out_format.word_bytes() * parts.up);

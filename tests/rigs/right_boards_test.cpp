@@ -4,6 +4,7 @@
 
 #include <cstdio>
 
+#include "tests/support/companions.hpp"
 #include "tests/support/rounds.hpp"
 
 using namespace halflsb;
@@ -41,7 +42,14 @@ std::string text_of(const RuleVerdict& verdict) {
 
 void judge_case(const RightBoard& board, const Plan& plan, const Case& the_case, const Returned& returned,
                 Totals& totals) {
-    CaseJudge judge(plan, the_case);
+    BaseResponse base;
+    if (the_case.companion) {
+        const auto found = std::find_if(plan.cases.begin(), plan.cases.end(),
+                                        [&](const Case& other) { return other.name == the_case.companion->base; });
+        REQUIRE(found != plan.cases.end());
+        base = base_of(board.respond(plan, *found).codes, static_cast<std::size_t>(plan.signal.channels));
+    }
+    CaseJudge judge(plan, the_case, false, std::move(base));
     const auto channels = static_cast<std::size_t>(plan.signal.channels);
     for (std::size_t first = 0; first < returned.codes.size(); first += 256 * channels)
         judge.add(std::span(returned.codes).subspan(first, std::min(256 * channels, returned.codes.size() - first)));
@@ -108,6 +116,8 @@ public:
         step(totals);
         silence(totals);
         loud(totals);
+        again(totals);
+        hardest(totals);
     }
 
 private:
@@ -186,6 +196,19 @@ private:
         judge(the_case, board_.respond(board_.plan, the_case), {rule}, totals);
     }
 
+    /// The signs that drive the output the furthest.
+    void hardest(Totals& totals) {
+        const Signal& signal = board_.plan.signal;
+        if (!is_plain_ || !signal.input.has_lsb() || !signal.output.has_lsb()) return;
+        std::string signs;
+        const std::vector<double> h = impulse_response(chain_of_channel(board_.plan.filter, 1), 1024);
+        for (std::size_t n = h.size(); n-- > 0;) signs += h[n] < 0.0 ? '-' : h[n] > 0.0 ? '+' : '0';
+        const Case the_case = made("signs", values({{"signs", signs},
+                                                    {"level_ratio", chance(random_, 50) ? 1.0 : -1.0},
+                                                    {"length_samples", random_.whole(1100, 2000)}}));
+        judge(the_case, board_.respond(board_.plan, the_case), {HeadroomRule{}}, totals);
+    }
+
     /// Whatever overflows then: the limits that claim nothing must say so.
     void loud(Totals& totals) {
         const std::int64_t length = random_.whole(1000, 4000);
@@ -211,6 +234,29 @@ private:
                 break;
         }
         judge(the_case, board_.respond(board_.plan, the_case), {}, totals);
+    }
+
+    /// Sent once more, as each rule that needs no oracle asks, at a level that may clip.
+    void again(Totals& totals) {
+        const std::int64_t cycle = rate_cycle_of(board_.plan).inputs, later = cycle * random_.whole(1, 30);
+        const Case base = made("noise", values({{"level_ratio", chance(random_, 20) ? 0.9 : level_ / 2.0},
+                                                {"seed", random_.whole(1, 1 << 30)},
+                                                {"length_samples", cycle * random_.whole(31, 1 + 4000 / cycle + 31)}}));
+        const auto linear = [](std::vector<std::int64_t> ratios, std::vector<std::int64_t> shifts) {
+            return LinearityRule{std::move(ratios), std::move(shifts), std::nullopt, std::nullopt};
+        };
+        const std::vector<RuleKind> kinds = {RepeatRule{std::nullopt}, BlocksRule{{random_.whole(1, 60)}, std::nullopt},
+                                             ShiftRule{{later}, std::nullopt},
+                                             linear({chance(random_, 50) ? -1 : 2}, {later})};
+        for (const RuleKind& kind : kinds) {
+            Case asked = base;
+            asked.rules = {{kind, {"plan.toml", 100, 1}}};
+            const Plan plan = with_case(board_.plan, asked);
+            for (const Case& the_case : plan.cases) {
+                if (the_case.companion && refusals(plan, the_case).empty())
+                    judge_case(board_, plan, the_case, board_.respond(plan, the_case), totals);
+            }
+        }
     }
 
     Random& random_;
@@ -278,8 +324,8 @@ TEST_CASE("none of a hundred fails any rule", "[rigs]") {
     CHECK(totals.fails == 0);
     // All of it must have happened.
     if (!draws_all_rounds()) return;
-    for (const char* kind :
-         {"error", "exact", "latency", "response", "noise", "drift", "tone", "transition", "silence"}) {
+    for (const char* kind : {"error", "exact", "latency", "response", "noise", "drift", "tone", "transition", "silence",
+                             "repeat", "blocks", "shift", "linearity", "headroom"}) {
         CAPTURE(kind);
         CHECK(totals.judged(kind) > 0);
     }

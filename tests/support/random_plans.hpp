@@ -288,6 +288,31 @@ private:
             put("bands", list(1, [&] { return band(); }));
     }
 
+    /// Of a deadline: one word of a percentile needs the other.
+    static void add_percentile(Table& table) {
+        if (table.recipe == nullptr || table.recipe->name != "deadline") return;
+        const auto is_of_it = [](const Key& key) {
+            return key.name == "percentile" || key.name == "max_percentile_ticks";
+        };
+        if (std::none_of(table.keys.begin(), table.keys.end(), is_of_it)) return;
+        std::erase_if(table.keys, is_of_it);
+        for (const char* name : {"percentile", "max_percentile_ticks"})
+            table.keys.push_back({name, "1.0", find_parameter(*table.recipe, name), false});
+    }
+
+    /// A stimulus that can answer rules which ask for much.
+    void suit(Table& stimulus, const Recipe& kind) const {
+        const auto become = [&](const char* shape, std::vector<std::pair<const char*, const char*>> words) {
+            stimulus = chosen("[case.stimulus]", "shape", *find_recipe(stimulus_recipes(), shape));
+            for (const auto& [name, value] : words)
+                stimulus.keys.push_back({name, value, find_parameter(*stimulus.recipe, name), true});
+        };
+        if (kind.name == "headroom") become("step", {{"level_ratio", "1.0"}, {"length_samples", "4096"}});
+        if (kind.name != "crosstalk") return;
+        become("noise", {{"length_samples", "4096"}});
+        stimulus.keys.push_back({"channel", "1", find_parameter(case_stimulus_recipe(), "channel"), true});
+    }
+
     /// The table with its required words and some of the others, thinned out until `taken` takes it. False when
     /// even one of the others does not do.
     template <class Taken>
@@ -307,6 +332,7 @@ private:
             table.keys.insert(table.keys.end(), others.begin(), others.begin() + static_cast<std::ptrdiff_t>(count));
             add_named_file(table);
             add_response_limits(table);
+            add_percentile(table);
             if (taken(table)) return true;
         }
         table = base;
@@ -316,6 +342,7 @@ private:
             table.keys.push_back(key);
             add_named_file(table);
             add_response_limits(table);
+            add_percentile(table);
             if (taken(table)) return true;
         }
         return false;
@@ -398,6 +425,7 @@ private:
             if (!settle(stimulus, [&](const Table& tried) { return goes({head, tried, rule}); })) continue;
             const Recipe& kind = rule_recipes()[below(rule_recipes().size())];
             rule = chosen("[[case.rule]]", "kind", kind);
+            suit(stimulus, kind);
             if (!settle(rule, [&](const Table& tried) { return goes({head, stimulus, tried}); })) continue;
             add_case_words(head, stimulus, rule);
             std::vector<Table> tables{head, stimulus};

@@ -369,3 +369,23 @@ TEST_CASE("terminal report: captures judged again say where they are from", "[re
     CHECK(text.find("wire") == std::string::npos);
     CHECK(judged_text(run, "0.1.0", false, style).find("as recorded") == std::string::npos);
 }
+
+TEST_CASE("terminal report: what blocks took stands where a rule is about time", "[report]") {
+    RunResult run = sample::run();
+    CaseResult& result = run.cases[0];
+    result.stream.ticks_per_sample = Spread{23.44, 31.0, 2140.7};
+    result.stream.round_trip_s = Spread{0.0042, 0.005, 0.0123456};
+    TextStyle style;
+    style.width = 120;
+    CHECK(case_text(run, 0, style).find("  time ") == std::string::npos);  // its latency rule is implicit
+    result.rules[0].rule.kind = DeadlineRule{};
+    CHECK(
+        case_text(run, 0, style)
+            .find(
+                "  time      of a sample on the board median 23.4, 99 % 31, most 2141 ticks; of a block there and back "
+                "median 4.2, 99 %\n  5, most 12.3 ms\n") != std::string::npos);
+    result.stream.ticks_per_sample.reset();
+    result.rules[0].rule.kind = LatencyRule{};
+    CHECK(case_text(run, 0, style).find("  time      of a block there and back median 4.2, 99 % 5, most 12.3 ms\n") !=
+          std::string::npos);
+}

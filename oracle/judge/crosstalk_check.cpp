@@ -1,0 +1,105 @@
+#include <algorithm>
+#include <array>
+#include <string>
+
+#include "oracle/judge/case_rates.hpp"
+#include "oracle/judge/covered_arithmetic.hpp"
+#include "oracle/judge/crosstalk_judge.hpp"
+#include "oracle/judge/derived_limits.hpp"
+#include "oracle/judge/latency_evidence.hpp"
+#include "oracle/judge/sent_block.hpp"
+#include "oracle/judge/units.hpp"
+#include "oracle/measure/coupling.hpp"
+
+namespace halflsb {
+namespace {
+
+/// How many batches of the case have at least a quarter of the mean power, counted without the mean: the spread over
+/// them says how sure a coupling is.
+int loud_batches(const Plan& plan, const Case& the_case) {
+    const std::int64_t length = the_case.stimulus->length_samples();
+    std::array<double, coupling_batches> power{};
+    double sum = 0.0;
+    std::vector<Code> codes;
+    std::vector<double> values;
+    const auto each_batch = [&](const auto& take) {
+        for (std::int64_t first = 0; first < length; first += static_cast<std::int64_t>(codes.size())) {
+            const std::int64_t batch = first * coupling_batches / length;
+            const std::int64_t end = ((batch + 1) * length + coupling_batches - 1) / coupling_batches;
+            codes.resize(static_cast<std::size_t>(
+                std::clamp<std::int64_t>(end - first, 1, static_cast<std::int64_t>(judge_block_samples))));
+            values.resize(codes.size());
+            fill_codes(*the_case.stimulus, plan.signal.input, plan.signal.quantise, first, codes);
+            values_of(plan.signal.input, codes, values);
+            take(static_cast<std::size_t>(batch));
+        }
+    };
+    each_batch([&](std::size_t) {
+        for (const double value : values) sum += value;
+    });
+    const double mean = sum / static_cast<double>(length);
+    double all = 0.0;
+    each_batch([&](std::size_t batch) {
+        for (const double value : values) power[batch] += (value - mean) * (value - mean);
+    });
+    for (const double each : power) all += each;
+    if (!(all > 0.0)) return 0;
+    return static_cast<int>(std::count_if(power.begin(), power.end(), [&](double each) {
+        return each >= 0.25 * all / static_cast<double>(coupling_batches);
+    }));
+}
+
+void check_coupling(const Rule& asked, const Plan& plan, const Case& the_case, std::vector<Refusal>& refusals) {
+    constexpr int loud_enough = 3 * coupling_batches / 4;
+    const std::int64_t late = std::max(expected_lag_of(the_case), 0);
+    const std::int64_t samples = judged_samples(plan, the_case) - late;
+    const CaseRates rates(plan, the_case);
+    if (samples < coupling_least_samples) {
+        const std::int64_t skipped = first_judged_sample(plan, the_case);
+        refusals.push_back({asked.position,
+                            "case \"" + the_case.name + "\" is too short for a coupling: " +
+                                std::to_string(std::max<std::int64_t>(samples, 0)) + " samples are judged, and " +
+                                std::to_string(coupling_least_samples) + " are needed",
+                            "give it at least " +
+                                std::to_string(rates.sent_for(skipped + late + coupling_least_samples)) + " samples"});
+    } else if (loud_batches(plan, the_case) < loud_enough) {
+        refusals.push_back({asked.position,
+                            "the stimulus of case \"" + the_case.name + "\" (shape = \"" + the_case.shape +
+                                "\") has its power in a part of the case, so nothing says how sure a coupling is",
+                            "use shape = \"noise\""});
+    }
+}
+
+}  // namespace
+
+void check(const CrosstalkRule& rule, const Rule& asked, const Plan& plan, const Case& the_case,
+           std::vector<Refusal>& refusals) {
+    if (plan.signal.channels < 2) {
+        refusals.push_back({asked.position, "crosstalk is between channels, and the signal has one",
+                            "say channels = 2 or more in [signal], or leave the rule out"});
+        return;
+    }
+    if (!the_case.channel) {
+        refusals.push_back({asked.position,
+                            "case \"" + the_case.name + "\" drives all channels, so none is left to listen on",
+                            "drive one alone: channel = 1 in its [case.stimulus], and a case for each of the others"});
+        return;
+    }
+    if (rule.max_db) check_coupling(asked, plan, the_case, refusals);
+    if (!rule.largest || !rule.largest->is_derived) return;
+    for (int channel = 1; channel <= plan.signal.channels; ++channel) {
+        if (is_driven(the_case, channel)) continue;
+        const auto chain = described_channel(plan, the_case, channel);
+        if (!chain) return;  // the reader has refused it
+        if (auto refusal = not_covered(asked, plan.signal, the_case, *chain)) {
+            refusals.push_back(std::move(*refusal));
+            return;
+        }
+        const auto derived = derived_limits(plan, the_case, channel);
+        if (!derived || derived->error.largest() <= full_scale_value(plan.signal.output)) continue;
+        refusals.push_back(too_wide(asked, plan.signal, the_case, derived->error.largest()));
+        return;
+    }
+}
+
+}  // namespace halflsb
