@@ -65,7 +65,7 @@ public:
 
     bool is_plain() const { return shift_.up == 0 && !is_subtracted_; }
     Sum times() const { return times_; }
-    Sum product(std::int64_t word) const {
+    Sum product(Sum word) const {
         const Sum brought = shift_(static_cast<Sum>(times_ * word));
         return is_subtracted_ ? -brought : brought;
     }

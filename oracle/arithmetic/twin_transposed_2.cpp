@@ -19,6 +19,7 @@ public:
         : output_(name + "output", plans.front().sum.target), states_(plans.size() - 1, 0) {
         for (const TransposedPlan& plan : plans) {
             nodes_.emplace_back(plan);
+            if (nodes_.size() > 1) is_wide_ = is_wide_ || plan.largest_state >= 0x1p63;
             if (nodes_.size() == 1) continue;
             registers_.emplace_back(name + "state " + std::to_string(nodes_.size() - 1), plan.sum.target);
         }
@@ -36,25 +37,34 @@ public:
             const std::int64_t x = in[i];
             const auto y = static_cast<std::int64_t>(output_.hold(summed(0, x, 0)));
             for (std::size_t k = 1; k < nodes_.size(); ++k) {
-                states_[k - 1] = static_cast<std::int64_t>(registers_[k - 1].hold(summed(k, x, y)));
+                states_[k - 1] = registers_[k - 1].hold(summed(k, x, y));
             }
             out[i] = y;
         }
     }
 
     void append_state(std::vector<std::int64_t>& state) const override {
-        state.insert(state.end(), states_.begin(), states_.end());
+        for (const Sum word : states_) {
+            state.push_back(static_cast<std::int64_t>(static_cast<std::uint64_t>(word)));
+            if (is_wide_) state.push_back(static_cast<std::int64_t>(word >> half_bits));
+        }
     }
 
     bool take_state(std::span<const std::int64_t>& state) override {
-        if (state.size() < states_.size()) return false;
+        const std::size_t words = is_wide_ ? 2 : 1;
+        if (state.size() < words * states_.size()) return false;
         for (std::size_t k = 0; k < states_.size(); ++k) {
-            states_[k] = state[k];
-            if (std::fabs(static_cast<double>(state[k])) > nodes_[k + 1].largest || !registers_[k].holds(state[k])) {
+            Sum& word = states_[k];
+            word = state[words * k];
+            if (is_wide_) {
+                word = static_cast<Sum>(static_cast<UnsignedOf<Sum>>(state[words * k + 1]) << half_bits |
+                                        static_cast<std::uint64_t>(state[words * k]));
+            }
+            if (std::fabs(static_cast<double>(word)) > nodes_[k + 1].largest || !registers_[k].holds(word)) {
                 return false;
             }
         }
-        state = state.subspan(states_.size());
+        state = state.subspan(words * states_.size());
         return true;
     }
 
@@ -96,7 +106,10 @@ private:
     std::vector<Node> nodes_;  ///< the output's sum, then that of each state
     std::vector<Register<Sum>> registers_;
     Register<Sum> output_;
-    std::vector<std::int64_t> states_;
+    std::vector<Sum> states_;
+    /// Some state, an accumulator's word that nobody limited, needs more than 64 bits: two words in state().
+    bool is_wide_ = false;
+    static constexpr int half_bits = bits_of<Sum> / 2;  ///< 64 where there can be a wide one
 };
 
 }  // namespace

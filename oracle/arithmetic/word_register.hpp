@@ -35,7 +35,7 @@ public:
         return settle(number);
     }
 
-    bool holds(std::int64_t number) const { return number >= floor_ && number <= ceiling_; }
+    bool holds(Sum number) const { return number >= floor_ && number <= ceiling_; }
 
     NodeReach reach() const { return {name_, word_, value_of(lowest_), value_of(highest_), overflows_}; }
 

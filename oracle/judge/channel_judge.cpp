@@ -48,6 +48,10 @@ void ChannelJudge::add(std::span<const Code> sent, std::span<const Code> respons
     response_values_.resize(response.size());
     values_of(judged_.plan.signal.output, response, response_values_);
     lag_.add(block.declared, response_values_);
+    for (const Code code : response) {
+        if (!first_code_) first_code_ = code;
+        response_moves_ = response_moves_ || code != *first_code_;
+    }
     // The sums only grow: once there is evidence enough, more changes nothing. To look costs a stretch of sums, so
     // small blocks do not look each time.
     if (has_evidence_) return;
@@ -59,7 +63,7 @@ void ChannelJudge::add(std::span<const Code> sent, std::span<const Code> respons
 }
 
 bool ChannelJudge::latency_told() const {
-    return judged_.is_driven() && latency_rule_ != nullptr && std::abs(expected_lag_) <= window_ &&
+    return judged_.is_driven() && latency_rule_ != nullptr && std::abs(expected_lag_) <= window_ && response_moves_ &&
            (has_evidence_ || discrimination_.smallest() >= evidence_needed_);
 }
 

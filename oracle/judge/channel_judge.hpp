@@ -66,6 +66,10 @@ private:
     LagDiscrimination discrimination_;
     double evidence_needed_;
     bool has_evidence_ = false;
+    /// A response that is one code throughout lies as well at one lag as at any other; a stimulus below half an LSB at
+    /// the output leaves right firmware such a one.
+    std::optional<Code> first_code_;
+    bool response_moves_ = false;
     std::size_t unlooked_samples_ = 0;
     std::vector<double> response_values_;
     std::optional<LagFigures> lags_;  ///< after begin_second_pass()

@@ -288,3 +288,29 @@ TEST_CASE("twin: a transposed section is computed in the narrowest accumulator t
     REQUIRE(with(30).problem);
     CHECK(with(30).problem->error.remedy == "accumulator_bits = 31 would do for one; a sum needs more");
 }
+
+// A difference of neighbours, 1.5 times: the state comes to 1.5 times full scale, 1.5 x 2^23 x 2^40 in its accumulator
+// of 128 bits. Board 2997 of seed 20261301 of the right ones went round there, and was found wrong.
+TEST_CASE("twin: a transposed state of more than 64 bits is held whole", "[twin]") {
+    FilterStage stage{BiquadCascade{{{-1.5, 1.5, 0.0, 0.0, 0.0}}}, 5};
+    stage.kind = "biquad-cascade";
+    stage.arithmetic.structure = Structure::transposed_2;
+    stage.arithmetic.rounding = Rounding::half_away;
+    stage.arithmetic.accumulator_fraction_bits = 40;
+    const SampleFormat i24 = *sample_format("i24");
+    const auto twin = make_twin(*describe({stage}, i24, i24, 1.0).described);
+    REQUIRE(twin);
+    std::vector<Code> sent;
+    for (Code n = 0; n <= 100; ++n) sent.push_back(n * 83886);
+    std::vector<Code> returned(sent.size());
+    twin->process(sent, returned);
+    for (std::size_t n = 1; n < sent.size(); ++n) REQUIRE(returned[n] == -3 * 83886 / 2);
+    for (const NodeReach& reach : twin->reaches()) CHECK(reach.overflows == 0);
+    // And so it stands in its state.
+    const auto other = make_twin(*describe({stage}, i24, i24, 1.0).described);
+    REQUIRE(other->set_state(twin->state()));
+    std::vector<Code> next(1), same(1);
+    twin->process(std::vector<Code>{sent.back()}, next);
+    other->process(std::vector<Code>{sent.back()}, same);
+    CHECK((next[0] == 0 && same[0] == 0));
+}

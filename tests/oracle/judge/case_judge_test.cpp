@@ -148,6 +148,23 @@ TEST_CASE("case judge: an expected latency of three is right at three and wrong 
     CHECK(early.rules[1].verdict == Verdict::pass);
 }
 
+// Board 239 of seed 20261301 of the right ones: noise that comes to less than half an LSB. It was said to be 64 samples
+// early.
+TEST_CASE("case judge: a response that never moves tells no latency", "[judge]") {
+    Plan plan = test::moving_average_plan();
+    plan.filter.front() = FilterStage{Fir{{0x1p-13}}, std::nullopt, {}, "fir", {}};
+    const Case the_case =
+        test::a_case(plan, "noise", values({{"level_ratio", 0.1}, {"length_samples", std::int64_t{20000}}}),
+                     {test::rule(plan, "error", values({{"max_lsb", 0.5}})),
+                      test::rule(plan, "latency", values({{"latency_samples", std::int64_t{0}}}))});
+    const std::vector<Code> silent(20000, 0);
+    const CaseJudgement judgement = judge(plan, the_case, silent);
+    REQUIRE(judgement.rules.size() == 2);
+    CHECK(judgement.rules[0].verdict == Verdict::pass);
+    CHECK(judgement.rules[1].verdict == Verdict::undecided);
+    CHECK_FALSE(judgement.latency_told);
+}
+
 TEST_CASE("case judge: a latency that a short case's window does not reach is undecided", "[judge]") {
     const Plan plan = test::moving_average_plan();
     const auto ruled = [&](std::int64_t length, std::int64_t expected) {
