@@ -8,8 +8,10 @@
 #include "runner/commands.hpp"
 #include "runner/config/firmware_image.hpp"
 #include "runner/config/repository.hpp"
+#include "runner/explain_run.hpp"
 #include "runner/record/run_folder.hpp"
 #include "runner/record/run_json.hpp"
+#include "runner/report/explanation_report.hpp"
 #include "runner/report/terminal_report.hpp"
 #include "runner/run_plan.hpp"
 #include "runner/world/interrupt.hpp"
@@ -57,6 +59,11 @@ public:
         const bool one_terminal = desk_.terminal.is_terminal(Stream::out) && desk_.terminal.is_terminal(Stream::err);
         if (run.ended_by && (run.folder.empty() || !one_terminal)) err(error_text(*run.ended_by, error_style_));
         if (!run.folder.empty()) out(summary_text(run, style_));
+    }
+    /// What explains a run in which a rule failed; nothing is said where nothing was found out.
+    void explained(const Explanation& explanation) {
+        out(explained_lines(explanation, style_));
+        if (desk_.answer != nullptr) desk_.answer->add_explanation(explanation);
     }
     /// Standard output could not be written: a report nobody got must not end in "pass".
     const std::optional<Error>& lost() const { return lost_; }
@@ -147,6 +154,18 @@ Outcome<std::vector<RunRequest>> make_requests(PlanAndRigs files, const Options&
     return requests;
 }
 
+/// A job does not wait for it longer.
+constexpr double longest_explaining_s = 10.0;
+
+void explain_failed(const RunResult& run, const Desk& desk, Reporter& reporter) {
+    if (run.counts().fail == 0 || run.ended_by || interrupted()) return;
+    const Instant started = desk.clock.now();
+    const auto explanation = explain_recorded(run.folder, desk.files, [&](int) {
+        return !interrupted() && to_seconds(desk.clock.now() - started) < longest_explaining_s;
+    });
+    if (explanation) reporter.explained(*explanation);
+}
+
 }  // namespace
 
 int check_command(const Options& options, const Desk& desk) {
@@ -163,6 +182,7 @@ int check_command(const Options& options, const Desk& desk) {
         Reporter reporter(desk, options);
         RunResult run = run_plan(request, desk.files, desk.clock, reporter);
         reporter.ended(run);
+        explain_failed(run, desk, reporter);
         statuses.push_back(exit_status_of(run));
         runs.push_back({request.rig.file, run.counts(), run.folder, statuses.back()});
         if (!lost) lost = reporter.lost();

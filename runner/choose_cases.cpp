@@ -1,6 +1,8 @@
 #include "runner/choose_cases.hpp"
 
 #include <algorithm>
+#include <set>
+#include <string_view>
 
 #include "runner/cli/case_selection.hpp"
 #include "runner/config/standard_set.hpp"
@@ -15,6 +17,23 @@ bool is_long(const Case& the_case) {
            std::find(the_case.labels.begin(), the_case.labels.end(), long_label) != the_case.labels.end();
 }
 
+/// A companion is nothing without its base, and what a case is held to is judged in its companions too.
+std::vector<std::size_t> with_family(const Plan& plan, const std::vector<std::size_t>& chosen) {
+    std::set<std::string_view> bases, named;
+    for (const std::size_t index : chosen) {
+        const Case& the_case = plan.cases[index];
+        named.insert(the_case.name);
+        if (the_case.companion) bases.insert(the_case.companion->base);
+    }
+    std::vector<std::size_t> all;
+    for (std::size_t index = 0; index < plan.cases.size(); ++index) {
+        const Case& the_case = plan.cases[index];
+        const bool is_of_chosen = the_case.companion && named.count(the_case.companion->base) > 0;
+        if (named.count(the_case.name) > 0 || bases.count(the_case.name) > 0 || is_of_chosen) all.push_back(index);
+    }
+    return all;
+}
+
 Outcome<std::vector<std::size_t>> by_name_and_label(const Plan& plan, const Options& options) {
     std::vector<std::string> names;
     std::vector<std::vector<std::string>> labels;
@@ -24,7 +43,9 @@ Outcome<std::vector<std::size_t>> by_name_and_label(const Plan& plan, const Opti
     }
     auto selected = select_cases(names, options.case_patterns);
     if (!selected) return selected;
-    return select_labelled(*selected, labels, options.labels);
+    auto chosen = select_labelled(*selected, labels, options.labels);
+    if (!chosen) return chosen;
+    return with_family(plan, *chosen);
 }
 
 double slowest_wire_s(const Plan& plan, const Case& the_case, const std::vector<Rig>& rigs) {

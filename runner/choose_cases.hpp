@@ -21,8 +21,9 @@ struct CaseChoice {
     std::string why_left_out;  ///< "--all runs it too", "no time within --for 60s"; "" when none is
 };
 
-/// By --case, --label, --all and --for. --for keeps the longest row of cases, from the first on, whose time on the
-/// wire fits, on the slowest of the rigs; an error of kind usage when not even the first one does, and without a rig.
+/// By --case, --label, --all and --for. A companion brings its base, a base its companions. --for keeps the longest row
+/// of cases, from the first on, whose time on the wire fits, on the slowest of the rigs; an error of kind usage when
+/// not even the first one does, and without a rig.
 Outcome<CaseChoice> choose_cases(const Plan& plan, const Options& options, const std::vector<Rig>& rigs);
 
 }  // namespace halflsb

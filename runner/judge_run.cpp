@@ -7,6 +7,7 @@
 #include "oracle/judge/case_judge.hpp"
 #include "oracle/judge/case_rates.hpp"
 #include "oracle/judge/rule_kinds.hpp"
+#include "runner/base_capture.hpp"
 #include "runner/record/capture_file.hpp"
 #include "runner/report/people.hpp"
 #include "runner/world/interrupt.hpp"
@@ -87,6 +88,16 @@ Outcome<void> check_question(const RecordedRun& record, const Plan& plan, const 
         return refused("it was captured with settings " + text_of(recorded.settings) + ", the plan says " +
                        text_of(the_case.settings));
     }
+    const auto same_question = [](const std::optional<Companion>& a, const std::optional<Companion>& b) {
+        if (!a || !b) return a.has_value() == b.has_value();
+        return a->base == b->base && a->terms == b->terms && a->block_samples == b->block_samples;
+    };
+    if (!same_question(the_case.companion, recorded.companion)) {
+        return refused(recorded.companion ? "it was sent to be compared with case '" +
+                                                printable(recorded.companion->base) + "', the plan says otherwise"
+                                          : "it was sent for itself, and the plan wants it compared with case '" +
+                                                printable(the_case.companion->base) + "'");
+    }
     const std::int64_t sent = recorded.stimulus.samples, length = the_case.stimulus->length_samples();
     const bool may_be_shorter = may_end_early(plan, the_case) && sent > 0;
     if (may_be_shorter ? sent > length : sent != length) {
@@ -97,6 +108,21 @@ Outcome<void> check_question(const RecordedRun& record, const Plan& plan, const 
     if (stimulus_sha256(plan, the_case, sent) != recorded.stimulus.sha256)
         return refused("the plan's stimulus is not the one that was sent: the SHA-256 of their codes differ");
     return {};
+}
+
+/// What a companion is held against: another capture of the record.
+Outcome<BaseResponse> recorded_base(const RecordedRun& record, const Plan& plan, const Case& the_case,
+                                    const Files& files) {
+    if (!the_case.companion) return BaseResponse{};
+    const CaseResult* const base = result_named(record.run.cases, the_case.companion->base);
+    std::string path;
+    if (base != nullptr && !base->capture_file.empty()) {
+        const auto inside = path_inside(files, record.folder, base->capture_file);
+        if (!inside) return inside.error();
+        path = *inside;
+    }
+    return base_response(the_case, base, path, base == nullptr ? "" : record.path_of(base->capture_file), plan.signal,
+                         record.run.board.block_samples, files);
 }
 
 /// A case that was not captured is no pass: the reason stands where that of an interrupted run does.
@@ -196,6 +222,7 @@ Outcome<CaseResult> judge_capture(const RecordedRun& record, const Plan& plan, c
     CaseResult result = *match.recorded;
     result.number = match.case_index + 1;
     result.returned_per_sent = returned_per_sent(plan, the_case);
+    result.companion = the_case.companion;
     result.stimulus.values = the_case.stimulus_values;  // equal codes were sent, whichever words made them
     if (result.verdict == CaseVerdict::invalid) return result;
     const std::string shown = record.path_of(result.capture_file);
@@ -212,7 +239,9 @@ Outcome<CaseResult> judge_capture(const RecordedRun& record, const Plan& plan, c
                          (as_sent ? ", its stimulus had " : ", the plan's filter returns ") + count_text(length),
                      "the record was edited; capture anew with halflsb check"};
     }
-    CaseJudge judge(plan, the_case, plots != nullptr);
+    auto base = recorded_base(record, plan, the_case, files);
+    if (!base) return base.error();
+    CaseJudge judge(plan, the_case, plots != nullptr, std::move(*base));
     std::vector<Code> codes;
     for (std::int64_t first = 0; first < length; first += block_samples) {
         if (interrupted()) return interrupted_error("case \"" + result.name + "\"");

@@ -26,6 +26,8 @@ int run(const Options& options, const Desk& desk) {
             return options.list ? list_command(options, desk) : check_command(options, desk);
         case Command::judge:
             return judge_command(options, desk);
+        case Command::explain:
+            return explain_command(options, desk);
         case Command::accept:
             return accept_command(options, desk);
         case Command::predict:

@@ -3,18 +3,17 @@
 #include "oracle/filters/channel_stages.hpp"
 #include "oracle/judge/case_judge.hpp"
 #include "oracle/judge/case_rates.hpp"
+#include "runner/case_cost.hpp"
 #include "runner/paper_arithmetic.hpp"
 #include "runner/paper_filter.hpp"
-#include "runner/wire/wire_cost.hpp"
 
 namespace halflsb {
 
 double wire_seconds_of(const Plan& plan, const Case& the_case, const Rig& rig) {
     const auto channels = static_cast<std::size_t>(plan.signal.channels);
     const RateCycle rate = rate_cycle_of(plan);
-    const std::int64_t before = the_case.start == Start::flush ? the_case.start_samples : 0;
     return wire_seconds(
-        wire_cost(the_case.stimulus->length_samples() + before, rig.block_samples,
+        case_cost(the_case, rig.block_samples,
                   {plan.signal.input.word_bytes() * channels, plan.signal.output.word_bytes() * channels,
                    static_cast<int>(rate.outputs), static_cast<int>(rate.inputs)}),
         rig.baud);
@@ -79,7 +78,8 @@ Prediction predict(const Plan& plan, const std::vector<std::size_t>& selected, c
         if (!go_on()) break;
         const Case& the_case = plan.cases[index];
         PredictedCase predicted{the_case.name, the_case.stimulus->length_samples(), false, std::nullopt};
-        predicted.latency_told = !plan.filter_is_unknown && latency_evidence(plan, the_case).can_tell;
+        predicted.latency_told =
+            !plan.filter_is_unknown && !the_case.companion && latency_evidence(plan, the_case).can_tell;
         if (rig != nullptr) {
             predicted.wire_s = wire_seconds_of(plan, the_case, *rig);
             *prediction.wire_s += *predicted.wire_s;

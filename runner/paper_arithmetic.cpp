@@ -59,6 +59,7 @@ std::vector<PredictedCaseError> case_errors(const Plan& plan, int channel, const
     for (const std::size_t index : selected) {
         if (!go_on()) break;
         const Case& the_case = plan.cases[index];
+        if (the_case.companion) continue;  // held against its base
         const int driven = channel_of(plan, the_case, channel);
         const auto bound = judged_bound(plan, the_case, driven);
         if (!bound) continue;
@@ -153,8 +154,12 @@ PredictedSight predict_sight(const Plan& plan, const std::vector<std::size_t>& s
     PredictedSight sight;
     std::vector<std::size_t> looked_at;
     std::int64_t samples = 0;
+    std::size_t cases = 0;
     for (const std::size_t index : selected) {
         const Case& the_case = plan.cases[index];
+        // The same twin gives the same answer twice: of companions only linearity sees an arithmetic.
+        if (the_case.companion && !std::holds_alternative<LinearityRule>(the_case.rules.front().kind)) continue;
+        ++cases;
         samples += std::min(the_case.stimulus->length_samples(), sensitivity_samples(plan.filter)) *
                    plan.signal.channels * (1 + operations_a_sample(plan.filter) / operations_for_free);
         if (samples <= sight_budget || looked_at.empty()) looked_at.push_back(index);
@@ -164,7 +169,7 @@ PredictedSight predict_sight(const Plan& plan, const std::vector<std::size_t>& s
             });
     }
     sight.cases = looked_at.size();
-    sight.cases_left_out = selected.size() - looked_at.size();
+    sight.cases_left_out = cases - looked_at.size();
     sight.sensitivity = sensitivity(plan, looked_at, go_on);
     if (sight.sensitivity.unknown.empty() || plan.filter_is_unknown) return sight;
     // Nothing is promised of the rounding: told is what these rules see when it is the usual one.

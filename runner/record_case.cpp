@@ -3,6 +3,7 @@
 #include <spdlog/spdlog.h>
 
 #include "oracle/judge/deadline_judge.hpp"
+#include "runner/base_capture.hpp"
 #include "runner/run_case.hpp"
 #include "runner/world/sha256.hpp"
 
@@ -71,6 +72,22 @@ Outcome<void> keep_capture(const RunDesk& desk, Recorder& recorder, const std::s
     return {};
 }
 
+/// What a companion is held against: the capture of a case before it in this run.
+Outcome<BaseResponse> base_of(const RunDesk& desk, const Case& the_case) {
+    if (!the_case.companion) return BaseResponse{};
+    const CaseResult* const base = result_named(desk.run.cases, the_case.companion->base);
+    const std::string path = base == nullptr ? "" : desk.folder.path_of(base->capture_file);
+    auto response =
+        base_response(the_case, base, path, path, desk.plan.signal, desk.run.board.block_samples, desk.files);
+    // This run has just written it.
+    if (!response) {
+        Error error = response.error();
+        error.kind = ErrorKind::output;
+        return error;
+    }
+    return response;
+}
+
 struct Attempt {
     RecordedCase recorded;
     bool again = false;  ///< the board is ready for another one
@@ -96,6 +113,8 @@ Outcome<Attempt> run_attempt(const RunDesk& desk, std::size_t index, std::size_t
     auto recorder =
         Recorder::open(desk.files, desk.folder.path_of(file), desk.plan.signal.output, desk.plan.signal.channels);
     if (!recorder) return recorder.error();
+    auto base = base_of(desk, the_case);
+    if (!base) return base.error();
     const std::string stimulus_file = stimulus_file_name(file);
     auto sent = open_sent(desk, the_case, stimulus_file);
     if (!sent) return sent.error();
@@ -110,7 +129,7 @@ Outcome<Attempt> run_attempt(const RunDesk& desk, std::size_t index, std::size_t
     const TickCounter counter{desk.board.greeting.tick_hz, desk.board.greeting.tick_bits};
     auto result = run_case({desk.plan, the_case, index + 1, place, desk.board.filter_number, *desk.board.wire,
                             desk.board.link->baud(), desk.settings, *recorder, keeps_sent, desk.clock, desk.observer,
-                            &plots, counter, keeps_ticks});
+                            std::move(*base), &plots, counter, keeps_ticks});
     if (!result) return result.error();
     Attempt made{{std::move(*result), std::nullopt, std::move(plots)}};
     if (auto decided = decide_on_another(desk, attempt, made); !decided) return decided.error();

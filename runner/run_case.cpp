@@ -7,7 +7,9 @@
 
 #include "oracle/judge/case_judge.hpp"
 #include "oracle/judge/case_rates.hpp"
+#include "oracle/judge/companion_case.hpp"
 #include "oracle/measure/log_histogram.hpp"
+#include "runner/case_cost.hpp"
 #include "runner/world/interrupt.hpp"
 #include "runner/world/sha256.hpp"
 
@@ -21,9 +23,10 @@ constexpr double step_s = 0.1;
 struct Passage {
     std::int64_t samples = 0;
     std::function<Outcome<void>(std::int64_t first_index, std::span<Code>)> fill;
-    std::function<Outcome<void>(const Received&)> keep;  ///< before anything else waits
-    std::function<void(std::span<const Code>)> look;     ///< once the line has work again
-    std::function<bool()> is_enough;                     ///< nothing more need be sent
+    std::function<Outcome<void>(const Received&)> keep;            ///< before anything else waits
+    std::function<void(std::span<const Code>)> look;               ///< once the line has work again
+    std::function<bool()> is_enough;                               ///< nothing more need be sent
+    std::function<std::int64_t(std::int64_t room)> most_together;  ///< of the samples that could be sent now
 };
 
 /// A case on its way: the facts grow with every step.
@@ -75,7 +78,7 @@ private:
         while (sent < passage.samples) {
             const auto room = static_cast<std::int64_t>(stage_.wire.room_samples());
             if (room == 0) break;
-            const std::int64_t count = std::min(room, passage.samples - sent);
+            const std::int64_t count = std::min(passage.most_together(room), passage.samples - sent);
             codes_.resize(static_cast<std::size_t>(count) * channels_);
             if (auto filled = passage.fill(sent, codes_); !filled) return filled;
             stage_.wire.send(codes_);
@@ -99,7 +102,10 @@ Passage flush_of(const CaseStage& stage) {
                 std::fill(codes.begin(), codes.end(), silence);
                 return {};
             },
-            [](const Received&) { return Outcome<void>(); }, [](std::span<const Code>) {}, [] { return false; }};
+            [](const Received&) { return Outcome<void>(); },
+            [](std::span<const Code>) {},
+            [] { return false; },
+            [](std::int64_t room) { return room; }};
 }
 
 std::vector<BlockTicks> ticks_of(const std::vector<AnsweredBlock>& blocks) {
@@ -159,7 +165,8 @@ Outcome<void> stream(const CaseStage& stage, CaseJudge& judge, CaseResult& resul
             }
             return stage.recorder.append(received.samples);
         },
-        [&](std::span<const Code> response) { judge.add(response); }, [&] { return judge.is_decided(); }};
+        [&](std::span<const Code> response) { judge.add(response); }, [&] { return judge.is_decided(); },
+        [&](std::int64_t room) { return sent_block_samples(stage.the_case, room); }};
     const auto passed = streaming.pass(stimulus);
     times.tell(result.stream);
     if (!passed) return passed.error();
@@ -198,19 +205,16 @@ CaseResult facts_of(const CaseStage& stage) {
     result.settings = stage.the_case.settings;
     result.rate_hz = stage.the_case.rate_hz;
     result.returned_per_sent = returned_per_sent(stage.plan, stage.the_case);
+    result.companion = stage.the_case.companion;
     return result;
 }
 
 }  // namespace
 
-std::int64_t sent_samples(const Case& the_case) {
-    return (the_case.start == Start::flush ? the_case.start_samples : 0) + the_case.stimulus->length_samples();
-}
-
 Outcome<CaseResult> run_case(const CaseStage& stage) {
     const Instant started = stage.clock.now();
     CaseResult result = facts_of(stage);
-    CaseJudge judge(stage.plan, stage.the_case, stage.plots != nullptr);
+    CaseJudge judge(stage.plan, stage.the_case, stage.plots != nullptr, stage.base);
 
     const Outcome<void> streamed = stream(stage, judge, result);
     if (result.stream.samples_sent > 0) take_figures(stage, result.stream);

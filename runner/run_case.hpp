@@ -3,6 +3,7 @@
 
 #include <string>
 
+#include "oracle/judge/base_response.hpp"
 #include "oracle/judge/block_ticks.hpp"
 #include "oracle/judge/plan.hpp"
 #include "oracle/judge/plots.hpp"
@@ -28,13 +29,11 @@ struct CaseStage {
     Recorder* sent;  ///< keeps the stimulus; nullptr where its recipe is enough
     const Clock& clock;
     RunObserver& observer;
+    BaseResponse base = {};      ///< of a companion
     CasePlots* plots = nullptr;  ///< receives what a person wants to see of it; nullptr: nothing is wanted
     TickCounter tick_counter = {};
     Recorder* ticks = nullptr;  ///< keeps the board's ticks (block_ticks.hpp); nullptr where no rule asks for them
 };
-
-/// Zeros of a flush and the stimulus: the instants that travel.
-std::int64_t sent_samples(const Case& the_case);
 
 /// Fills everything but names of files, their hashes and earlier attempts. A bench error makes the case invalid,
 /// with the reason, and is no Error here. Errors: interrupted (nothing is recorded), output (disk full).

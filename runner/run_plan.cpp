@@ -5,13 +5,13 @@
 #include <algorithm>
 
 #include "oracle/judge/rule_kinds.hpp"
+#include "runner/case_cost.hpp"
 #include "runner/record_case.hpp"
 #include "runner/report/html_report.hpp"
 #include "runner/report/junit_report.hpp"
 #include "runner/run_case.hpp"
 #include "runner/shell_words.hpp"
 #include "runner/standard_facts.hpp"
-#include "runner/wire/wire_cost.hpp"
 #include "runner/world/interrupt.hpp"
 #include "runner/world/sha256.hpp"
 
@@ -63,8 +63,7 @@ std::optional<double> wire_seconds_of(const RunRequest& request, const Board& bo
     const WireInstant instant = instant_of(board.greeting.filters[board.filter_number]);
     double total_s = 0.0;
     for (const std::size_t index : request.selected) {
-        const WireCost cost = wire_cost(sent_samples(request.plan.cases[index]), block_samples, instant);
-        total_s += wire_seconds(cost, baud);
+        total_s += wire_seconds(case_cost(request.plan.cases[index], block_samples, instant), baud);
     }
     return total_s;
 }

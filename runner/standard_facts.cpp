@@ -18,7 +18,8 @@ std::vector<CasePurpose> purposes_of(const Plan& plan, const std::vector<std::si
 bool has_derived_limit(const Case& the_case) {
     return std::any_of(the_case.rules.begin(), the_case.rules.end(), [](const Rule& rule) {
         const auto* error = std::get_if<ErrorRule>(&rule.kind);
-        return error != nullptr && is_derived(*error);
+        const auto* linearity = std::get_if<LinearityRule>(&rule.kind);
+        return (error != nullptr && is_derived(*error)) || (linearity != nullptr && !linearity->largest);
     });
 }
 

@@ -26,7 +26,8 @@ struct SumPlan {
     Rounding product_rounding = Rounding::floor;
     Rounding sum_rounding = Rounding::floor;
     bool saves_fraction = false;
-    Word target;  ///< that the sum is shortened to
+    int constant_eighths = 0;  ///< of the last place of the target, with which each sum begins
+    Word target;               ///< that the sum is shortened to
     std::vector<PlannedTerm> terms;
 
     /// Of the numbers that the sum can come to, in fraction bits of the accumulator.
@@ -82,14 +83,15 @@ public:
         : held_(plan.name + "accumulator", plan.accumulator),
           to_target_{plan.target.fraction_bits - plan.accumulator.fraction_bits, plan.sum_rounding,
                      plan.target.overflow},
-          saves_fraction_(plan.saves_fraction) {}
+          saves_fraction_(plan.saves_fraction),
+          constant_(eighths_of_a_step(plan.constant_eighths, -to_target_.up)) {}
 
     void reset() {
         held_.reset();
         rest_ = 0;
     }
 
-    void start() { sum_ = rest_; }
+    void start() { sum_ = rest_ + constant_; }
     void add(Sum term) { sum_ = held_.hold(sum_ + term); }
 
     /// The sum with the fraction bits of the target, before it overflows there.
@@ -111,9 +113,16 @@ public:
     NodeReach reach() const { return held_.reach(); }
 
 private:
+    /// In numbers of the accumulator, which has `places` more than the target.
+    static Sum eighths_of_a_step(int eighths, int places) {
+        if (places < 0) return 0;
+        return (static_cast<Sum>(eighths) * (Sum{1} << places)) / 8;
+    }
+
     Register<Sum> held_;
     Shift to_target_;
     bool saves_fraction_;
+    Sum constant_;
     Sum sum_ = 0, rest_ = 0;
 };
 

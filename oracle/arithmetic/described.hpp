@@ -55,6 +55,10 @@ struct DescribedStage {
     std::vector<int> discarded_bits;  ///< of a CIC decimator's registers (cic_registers.hpp); empty: none
     Division division = Division::divide;
     Summation summation = Summation::newest_first;
+    /// Said by no plan, for whoever wants to know what a firmware does that computes so: eighths of the last place that
+    /// a sum is shortened to, added to each sum before; and what a moving average divides by, in place of its points.
+    int sum_constant_eighths = 0;
+    std::optional<int> divisor;
 
     // Of float32 stages:
     bool fused = false;

@@ -34,8 +34,8 @@ double product(double factor, double amount) { return factor == 0.0 || amount ==
 struct KnownPoint {
     RoundingPoint point;
     PathSums sums;
-    /// The step kept, or the coarsest of the words on the way to it: a few codes of a coarse word, brought into a finer
-    /// one, leave a few remainders and not all.
+    /// The step kept, or the coarsest of the words on the way to it, by the bits that they use: a few codes of a coarse
+    /// word, brought into a finer one, leave a few remainders and not all.
     double coarsest_step = 0.0;
     /// Of the number that is shortened, for white noise of rms 1 at the input; looked up once it is asked for.
     std::optional<double> level_per_rms;
@@ -214,7 +214,7 @@ private:
             const auto lags = std::min(most_lags, static_cast<std::size_t>(point.count));
             known.points.push_back({point,
                                     path_sums(path_of(point, exact_.stages), samples, lags, has_past),
-                                    std::max(point.step, coarsest_word_before(point.stage)),
+                                    std::max({point.step, point.coarsest_step, coarsest_word_before(point.stage)}),
                                     {}});
         };
         for (const RoundingPoint& point : points_) add(point);

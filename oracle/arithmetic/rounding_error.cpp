@@ -14,7 +14,8 @@ constexpr double most_parts = 0x1p40;
 /// Of floor(x + c) the mean grows with c, up to that of half-up: half a part above 0 where ties come up. Numbers of one
 /// part drop nothing as they are described; what is not known may have dropped a bit all the same.
 RoundingError unknown_rounding(const RoundedNumbers& numbers) {
-    const double parts = numbers.usual_parts > 0.0 ? numbers.usual_parts : numbers.parts;
+    double parts = numbers.usual_parts > 0.0 ? numbers.usual_parts : numbers.parts;
+    if (numbers.may_lean_to_even) parts *= 0.5;
     const double highest_mean = parts <= most_parts ? 0.5 / std::max(2.0, parts) : 0.0;
     return {-1.0, 0.5, -0.5, highest_mean, false, 1.0 / 12.0};
 }
@@ -48,32 +49,62 @@ void find_ends(Rounding rounding, double parts, double first, double last, Round
     }
 }
 
-void find_moments(Rounding rounding, double parts, RoundingError& error) {
-    const double flat = (1.0 - 1.0 / (parts * parts)) / 12.0, tie = 0.5 / parts;
-    const bool has_ties = std::fmod(parts, 2.0) == 0.0;
-    error.variance = flat;
+struct Moments {
+    double mean_lowest = 0.0, mean_highest = 0.0, variance = 0.0;
+    bool mean_varies = false;
+};
+
+/// Of remainders k / count, or (k + 1/2) / count when they are `between`, k = 0 .. count - 1, each as likely.
+Moments moments_of(Rounding rounding, double count, bool between) {
+    Moments moments;
+    const double flat = (1.0 - 1.0 / (count * count)) / 12.0, tie = 0.5 / count;
+    const bool has_ties = std::fmod(count, 2.0) == (between ? 1.0 : 0.0);
+    const double floored = between ? 0.5 : 0.5 - tie;
+    moments.variance = flat;
     switch (rounding) {
         case Rounding::floor:
-            error.mean_lowest = error.mean_highest = -(0.5 - tie);
+            moments.mean_lowest = moments.mean_highest = -floored;
             break;
         case Rounding::toward_zero:
-            error.mean_lowest = -(0.5 - tie);
-            error.mean_highest = 0.5 - tie;
-            error.mean_varies = true;
+            moments.mean_lowest = -floored;
+            moments.mean_highest = floored;
+            moments.mean_varies = true;
             break;
         case Rounding::half_up:
-            error.mean_lowest = error.mean_highest = has_ties ? tie : 0.0;
+            moments.mean_lowest = moments.mean_highest = has_ties ? tie : 0.0;
             break;
         case Rounding::half_away:
             // Ties go with the sign of the number: the mean is anything between those of half-up and half-down.
-            error.mean_lowest = has_ties ? -tie : 0.0;
-            error.mean_highest = -error.mean_lowest;
-            error.mean_varies = has_ties;
+            moments.mean_lowest = has_ties ? -tie : 0.0;
+            moments.mean_highest = -moments.mean_lowest;
+            moments.mean_varies = has_ties;
             break;
         case Rounding::half_even:
-            if (has_ties) error.variance = flat + tie * tie;  // a tie adds +-1/2 instead of 1/2
+            if (has_ties) moments.variance = flat + tie * tie;  // a tie adds +-1/2 instead of 1/2
             break;
     }
+    return moments;
+}
+
+/// Moments of either, or of any mixture: the variance of a mixture is at most the larger one, and a quarter of the
+/// square of what the means differ by.
+Moments either(const Moments& a, const Moments& b) {
+    const double lowest = std::min(a.mean_lowest, b.mean_lowest), highest = std::max(a.mean_highest, b.mean_highest);
+    const double apart = std::max(std::fabs(a.mean_lowest - b.mean_lowest), std::fabs(a.mean_highest - b.mean_highest));
+    return {lowest, highest, std::max(a.variance, b.variance) + 0.25 * apart * apart, a.mean_varies || b.mean_varies};
+}
+
+void find_moments(Rounding rounding, double parts, const RoundedNumbers& numbers, RoundingError& error) {
+    Moments moments = moments_of(rounding, parts, false);
+    if (numbers.may_lean_to_even && std::fmod(parts, 2.0) == 0.0) {
+        // Of even words the multiples of 2 / parts come up alone, moved by what is carried.
+        moments = either(moments, moments_of(rounding, 0.5 * parts, false));
+        if (numbers.carries) moments = either(moments, moments_of(rounding, 0.5 * parts, true));
+    }
+    error.mean_lowest = moments.mean_lowest;
+    error.mean_highest = moments.mean_highest;
+    error.mean_varies = moments.mean_varies;
+    error.variance = moments.variance;
 }
 
 }  // namespace
@@ -113,9 +144,7 @@ RoundingError rounding_error(std::optional<Rounding> rounding, const RoundedNumb
     if (!(numbers.parts <= most_parts)) {
         error = of_real_numbers(*rounding);
         if (numbers.usual_parts > 0.0 && numbers.usual_parts <= most_parts) {
-            error.mean_varies = false;
-            error.mean_lowest = error.mean_highest = 0.0;
-            find_moments(*rounding, numbers.usual_parts, error);
+            find_moments(*rounding, numbers.usual_parts, numbers, error);
         }
         return error;
     }
@@ -138,7 +167,7 @@ RoundingError rounding_error(std::optional<Rounding> rounding, const RoundedNumb
     constexpr double slack = 1e-6;
     find_ends(*rounding, numbers.parts, std::ceil(low * numbers.parts - slack),
               std::floor(high * numbers.parts + slack), error);
-    find_moments(*rounding, numbers.usual_parts > 0.0 ? numbers.usual_parts : numbers.parts, error);
+    find_moments(*rounding, numbers.usual_parts > 0.0 ? numbers.usual_parts : numbers.parts, numbers, error);
     // Where a narrow range leaves out some remainders, the moments are those of an error within its ends.
     error.mean_lowest = std::clamp(error.mean_lowest, error.lowest, error.highest);
     error.mean_highest = std::clamp(error.mean_highest, error.lowest, error.highest);

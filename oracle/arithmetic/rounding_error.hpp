@@ -37,6 +37,11 @@ struct RoundedNumbers {
     /// Of the numbers that come up as long as nothing is clipped, at most parts; mean and variance are theirs. 0:
     /// parts.
     double usual_parts = 0.0;
+    /// Words in them were rounded half to even, so that more of them may be even than odd, in a share that hangs on the
+    /// filter: mean and variance are the widest over all shares (docs/methods.md, "Derived limits").
+    bool may_lean_to_even = false;
+    /// What was dropped before is added: then the remainders of even words may as well be the odd multiples.
+    bool carries = false;
 };
 
 /// The ends are attained, each by one of these numbers (where parts is finite). nullopt: any rounding from floor to

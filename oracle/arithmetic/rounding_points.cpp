@@ -20,11 +20,11 @@ double power_of_two(int exponent) { return std::ldexp(1.0, exponent); }
 
 class StagePoints {
 public:
-    StagePoints(const DescribedChain& chain, const ExactChain& exact, std::size_t index, int in_spare)
-        : here_(chain, exact, index, in_spare) {}
+    StagePoints(const DescribedChain& chain, const ExactChain& exact, std::size_t index, const UsedBits& used)
+        : here_(chain, exact, index, used) {}
 
     /// Of what find() has left the stage.
-    int spare_out() const { return here_.in_spare; }
+    UsedBits used_out() const { return {here_.in_spare, here_.sums.coarsest_step, here_.may_lean()}; }
 
     std::vector<RoundingPoint> find() {
         const FilterDesign& design = here_.exact.stages[here_.exact.first_of[here_.index]].design;
@@ -78,12 +78,12 @@ private:
         const bool is_exact = !target.saves_fraction && here_.stage.division != Division::reciprocal;
         const auto parts_of = [odd](int fraction_bits) { return odd * power_of_two(std::max(0, fraction_bits)); };
         here_.sums.add_shortening(target, {parts_of(bits), is_exact ? -top : -unlimited, is_exact ? top : unlimited,
-                                           parts_of(bits - here_.in_spare)});
+                                           parts_of(bits - here_.in_spare), here_.in_may_lean});
         here_.set_spare_out(here_.stage.out.word.fraction_bits + (odd == 1.0 ? bits - here_.in_spare : 0));
     }
 
     void of_comb(const Comb& comb) {
-        here_.find_spare_of_state({}, {});
+        here_.find_spare_of_state({comb.direct, comb.forward}, {comb.feedback});
         SumTarget target = here_.at_section("sum", 0, RoundingPoint::Place::loop);
         target.saves_fraction = here_.stage.fraction_saving;
         target.fraction_bits = here_.stage.state.fraction_bits;
@@ -91,7 +91,7 @@ private:
                             here_.feedback(comb.feedback, here_.stage.state)},
                            target);
         here_.add_output(0);
-        here_.set_spare_out(here_.stage.state.fraction_bits - here_.state_spare);
+        here_.set_spare_out(here_.result_bits);
     }
 
     // What a register no longer has is cut off, whatever the rounding of the stage.
@@ -149,14 +149,15 @@ private:
 
 std::vector<RoundingPoint> rounding_points(const DescribedChain& chain, const ExactChain& exact) {
     std::vector<RoundingPoint> all;
-    int spare = 0;
+    UsedBits used;
     for (std::size_t i = 0; i < chain.stages.size(); ++i) {
         const bool is_float = chain.stages[i].number == NumberKind::float32;
-        StagePoints stage(chain, exact, i, is_float ? 0 : spare);
+        if (is_float) used.spare = 0;
+        StagePoints stage(chain, exact, i, used);
         if (!is_float) {
             for (RoundingPoint& point : stage.find()) all.push_back(std::move(point));
         }
-        spare = is_float ? 0 : stage.spare_out();
+        if (!is_float) used = stage.used_out();
     }
     return all;
 }

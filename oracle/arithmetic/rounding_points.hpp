@@ -22,6 +22,7 @@ struct RoundingPoint {
     FilterNode node = {};   ///< in the exact chain; in_feedback as `place` has it
     Place place = Place::behind;
     double step = 1.0;            ///< the last place kept, as a value
+    double coarsest_step = 0.0;   ///< of the words on the way here, by the bits that they use
     double parts = 1.0;           ///< remainders are multiples of step / parts, the finest of them; may be infinite
     int count = 1;                ///< errors a sample: products that are shortened each by itself
     RoundingError error = {};     ///< of all of them in one sample, as values

@@ -9,6 +9,32 @@ namespace {
 
 using Place = RoundingPoint::Place;
 
+/// What state k of a section in transposed-2 adds up to, of white noise at the section's input. With a0 = 1 and S_k the
+/// sum before its delay, S_k = sum over j >= k of z^-(j - k) (b_j X - a_j Y); as B X = A Y, that is
+/// z^k sum over j < k of z^-j (a_j B - b_j A) / A times X.
+FilterStage signal_of_state(const SectionCoefficients& s, std::size_t k, std::size_t order) {
+    std::vector<double> b = s.forward, a{1.0};
+    a.insert(a.end(), s.feedback.begin(), s.feedback.end());
+    b.resize(2 * order + 1, 0.0);
+    a.resize(2 * order + 1, 0.0);
+    std::vector<double> numerator(order, 0.0);
+    for (std::size_t m = 0; m < order; ++m) {
+        for (std::size_t j = 0; j < k; ++j) numerator[m] += a[j] * b[m + k - j] - b[j] * a[m + k - j];
+    }
+    a.resize(order + 1);
+    FilterStage stage;
+    if (std::all_of(numerator.begin(), numerator.end(), [](double c) { return c == 0.0; })) {
+        stage.design = Fir{{0.0}};
+    } else if (order <= 2) {
+        numerator.resize(2, 0.0);
+        a.resize(3, 0.0);
+        stage.design = BiquadCascade{{{numerator[0], numerator[1], 0.0, a[1], a[2]}}};
+    } else {
+        stage.design = Recursion{std::move(numerator), std::move(a)};
+    }
+    return stage;
+}
+
 class SectionPoints {
 public:
     explicit SectionPoints(StageSums& stage_sums) : here_(stage_sums) {}
@@ -28,10 +54,11 @@ public:
             if (!stays_wide) here_.add_output(j);
         }
         here_.in = stays_wide ? here_.stage.state : here_.stage.out.word;
-        here_.in_spare = stays_wide ? here_.state_spare : 0;
-        if (!stays_wide && here_.stage.structure != Structure::direct_2 &&
-            here_.stage.structure != Structure::transposed_2) {
-            here_.set_spare_out(here_.stage.state.fraction_bits - here_.state_spare);
+        here_.in_may_lean = here_.may_lean();
+        if (stays_wide) {
+            here_.in_spare = here_.state_spare;
+        } else {
+            here_.set_spare_out(here_.result_bits);
         }
     }
 
@@ -56,7 +83,7 @@ private:
         SumTarget first = here_.at_section("state", j, Place::entry);
         first.saves_fraction = here_.stage.fraction_saving;
         first.fraction_bits = state.fraction_bits;
-        first.from_input = path_to_state(here_.exact.stages, first.node);
+        first.from_input = first.from_input_of_feedback = path_to_state(here_.exact.stages, first.node);
         std::vector<Term> terms{here_.whole(here_.in)};
         for (const double a : s.feedback) terms.push_back(here_.feedback(a, state));
         here_.sums.add_sum(std::move(terms), first);
@@ -70,12 +97,20 @@ private:
 
     // What the states lose comes in at the summing point of y, a sample or more later.
     void of_transposed(const SectionCoefficients& s, std::size_t j) {
-        here_.sums.add_sum({here_.whole(here_.stage.state), here_.term(s.forward.front(), here_.in)},
-                           here_.at_section("output", j, Place::loop));
         const std::size_t order = std::max(s.forward.size() - 1, s.feedback.size());
+        SumTarget output = here_.at_section("output", j, Place::loop);
+        const auto to_state = [&](std::size_t k) {
+            FilterChain path = output.from_input_of_terms;
+            if (k <= order) path.push_back(signal_of_state(s, k, order));
+            return path;
+        };
+        output.from_input_of_state = to_state(1);
+        here_.sums.add_sum({here_.whole(here_.stage.state), here_.term(s.forward.front(), here_.in)}, output);
         for (std::size_t k = 1; k <= order; ++k) {
             SumTarget state = here_.at_section("state " + std::to_string(k), j, Place::loop);
             state.fraction_bits = here_.stage.state.fraction_bits;
+            state.from_input = to_state(k);
+            state.from_input_of_state = to_state(k + 1);
             std::vector<Term> terms;
             if (k < order) terms.push_back(here_.whole(here_.stage.state));
             if (k < s.forward.size()) terms.push_back(here_.term(s.forward[k], here_.in));

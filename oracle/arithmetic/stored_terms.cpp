@@ -40,6 +40,7 @@ SumPlan plan_of(const DescribedStage& stage, std::string name, std::vector<Plann
             .sum_rounding = stage.rounding,
             // Of a sum that is not shortened nothing is left.
             .saves_fraction = stage.fraction_saving && accumulator.fraction_bits > target.fraction_bits,
+            .constant_eighths = stage.sum_constant_eighths,
             .target = target,
             .terms = std::move(terms)};
 }

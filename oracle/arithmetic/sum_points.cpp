@@ -11,11 +11,8 @@ namespace {
 
 constexpr double unlimited = std::numeric_limits<double>::infinity();
 
-/// Of a double: c is a multiple of 2^-n for the least such n.
-int fraction_bits_of(double c) {
-    int exponent = 0;
-    const auto mantissa = static_cast<std::int64_t>(std::ldexp(std::frexp(c, &exponent), 53));
-    return 53 - exponent - std::countr_zero(static_cast<std::uint64_t>(mantissa));
+bool any_leans_to_even(const std::vector<Term>& terms) {
+    return std::any_of(terms.begin(), terms.end(), [](const Term& t) { return t.may_lean_to_even; });
 }
 
 /// Numbers of which nothing says how finely the firmware stores their coefficients. Taken as they are designed, they
@@ -26,7 +23,7 @@ RoundedNumbers designed_numbers(const std::vector<Term>& terms, int target_bits)
         const int of_word = t.word.fraction_bits - t.spare_bits;
         most = std::max(most, fraction_bits_of(t.coefficient) + of_word - target_bits);
     }
-    return {unlimited, -unlimited, unlimited, std::ldexp(1.0, std::min(most, 1000))};
+    return {unlimited, -unlimited, unlimited, std::ldexp(1.0, std::min(most, 1000)), any_leans_to_even(terms)};
 }
 
 int trailing_zeros(std::int64_t stored) { return std::countr_zero(static_cast<std::uint64_t>(stored)); }
@@ -34,6 +31,12 @@ int trailing_zeros(std::int64_t stored) { return std::countr_zero(static_cast<st
 double power_of_two(int exponent) { return std::ldexp(1.0, exponent); }
 
 }  // namespace
+
+int fraction_bits_of(double c) {
+    int exponent = 0;
+    const auto mantissa = static_cast<std::int64_t>(std::ldexp(std::frexp(c, &exponent), 53));
+    return 53 - exponent - std::countr_zero(static_cast<std::uint64_t>(mantissa));
+}
 
 std::optional<Rounding> SumPoints::rounding_of(const SumTarget& target) const {
     return stage_.rounding_is_said ? std::optional(target.rounding) : std::nullopt;
@@ -47,14 +50,16 @@ RoundingPoint SumPoints::point_at(const SumTarget& target) const {
     point.node.in_feedback = target.place == RoundingPoint::Place::loop;
     point.place = target.place;
     point.step = power_of_two(-target.fraction_bits);
+    point.coarsest_step = coarsest_step;
     point.from_input = target.from_input;
     return point;
 }
 
-void SumPoints::add_shortening(const SumTarget& target, const RoundedNumbers& numbers) {
+void SumPoints::add_shortening(const SumTarget& target, RoundedNumbers numbers) {
     // What is not known may drop anything, even where the words as they are described drop nothing.
     if (stage_.rounding_is_said && numbers.parts <= 1.0) return;
     RoundingPoint point = point_at(target);
+    numbers.carries = target.saves_fraction;
     point.parts = stage_.rounding_is_said ? numbers.parts : unlimited;
     point.error = rounding_error(rounding_of(target), numbers).times(point.step);
     point.variance_each = point.error.variance;
@@ -81,33 +86,37 @@ void SumPoints::add_sum(std::vector<Term> terms, const SumTarget& target) {
     int most = terms.front().fraction_bits;
     for (const Term& t : terms) most = std::max(most, t.fraction_bits);
     const int accumulator = accumulator_fraction_bits_of(stage_, most, target.fraction_bits);
-    add_products(terms, target, accumulator, false);
-    add_products(terms, target, accumulator, true);
+    for (const Term::Of of : {Term::Of::input, Term::Of::state, Term::Of::feedback})
+        add_products(terms, target, accumulator, of);
     if (!is_known()) {
         if (stage_.rounding_at != RoundingAt::product)
             add_shortening(target, designed_numbers(terms, target.fraction_bits));
         return;
     }
     RoundedNumbers numbers = numbers_of(terms, accumulator, target.fraction_bits);
-    if (target.saves_fraction) numbers = {numbers.parts, -unlimited, unlimited, numbers.usual_parts};
+    if (target.saves_fraction) numbers.lowest = -unlimited, numbers.highest = unlimited;
     add_shortening(target, numbers);
 }
 
-// Forward products and those of feedback are two points: the errors of one word by several coefficients go together.
-void SumPoints::add_products(const std::vector<Term>& terms, const SumTarget& target, int accumulator,
-                             bool of_feedback) {
+// Forward products, the state that is added and the products of feedback are points of their own: the errors of one
+// word by several coefficients go together, and of silence only the first lose nothing.
+void SumPoints::add_products(const std::vector<Term>& terms, const SumTarget& target, int accumulator, Term::Of of) {
     SumTarget products = target;
     products.rounding = stage_.rounding;  // whatever the rounding of the sum is
-    products.what += of_feedback ? ", products of feedback" : ", products";
+    products.what += of == Term::Of::feedback ? ", products of feedback"
+                     : of == Term::Of::state  ? ", state"
+                                              : ", products";
     products.fraction_bits = accumulator;
     RoundingPoint point = point_at(products);
     point.count = 0;
     point.factor = unlimited;
-    point.is_of_input = !of_feedback && target.multiplies_input;
-    point.from_input = of_feedback ? target.from_input : target.from_input_of_terms;
+    point.is_of_input = of == Term::Of::input && target.multiplies_input;
+    point.from_input = of == Term::Of::feedback ? target.from_input_of_feedback
+                       : of == Term::Of::state  ? target.from_input_of_state
+                                                : target.from_input_of_terms;
     const bool any = stage_.rounding_at == RoundingAt::product && !is_known();
     for (const Term& t : terms) {
-        if (t.is_feedback != of_feedback || (!any && !stage_.coefficients_are_said)) continue;
+        if (t.of != of || (!any && !stage_.coefficients_are_said)) continue;
         Term product = t;
         product.is_subtracted = false;
         const RoundedNumbers numbers =
@@ -144,7 +153,8 @@ RoundedNumbers SumPoints::numbers_of(const std::vector<Term>& terms, int accumul
         if (gained < 0) low -= power_of_two(target_bits - accumulator), high += power_of_two(target_bits - accumulator);
     }
     const int dropped = accumulator - target_bits;
-    return {power_of_two(std::max(0, dropped - common)), low, high, power_of_two(std::max(0, dropped - usual))};
+    return {power_of_two(std::max(0, dropped - common)), low, high, power_of_two(std::max(0, dropped - usual)),
+            any_leans_to_even(terms)};
 }
 
 }  // namespace halflsb

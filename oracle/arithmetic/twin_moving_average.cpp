@@ -15,6 +15,7 @@ public:
         : is_running_(stage.structure == Structure::running_sum),
           is_growing_(stage.stage.initial == Initial::growing),
           oldest_first_(stage.summation == Summation::oldest_first),
+          constant_(division.divisor * stage.sum_constant_eighths / 8),
           division_(division),
           quotient_(quotient),
           accumulator_(name + "accumulator",
@@ -93,7 +94,7 @@ private:
 
     /// By the samples so far where there are fewer than points and the average grows.
     Int128 divided_sum() {
-        if (!is_growing_ || samples_ == division_.divisor) return quotient_(sum_);
+        if (!is_growing_ || samples_ == division_.divisor) return quotient_(sum_ + constant_);
         Division128 division = division_;
         division.divisor = ++samples_;
         auto so_far = Quotient::of(division);
@@ -102,6 +103,7 @@ private:
 
     bool is_running_, is_growing_, oldest_first_;
     std::int64_t samples_ = 0;  ///< up to points, of an average that grows
+    std::int64_t constant_;     ///< added to each sum
     Division128 division_;
     Quotient quotient_;
     Int128 sum_ = 0;
@@ -113,7 +115,7 @@ private:
 
 std::unique_ptr<StageTwin> make_moving_average_twin(const DescribedStage& stage, const std::string& name) {
     const int points = std::get<MovingAverage>(stage.stage.design).points;
-    Division128 division{.divisor = points,
+    Division128 division{.divisor = stage.divisor.value_or(points),
                          .up = stage.out.word.fraction_bits - stage.in.word.fraction_bits,
                          .saves_fraction = stage.fraction_saving,
                          .rounding = stage.rounding,

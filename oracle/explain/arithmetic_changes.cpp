@@ -40,6 +40,7 @@ public:
         for (std::size_t i = 0; i < filter.size(); ++i) {
             if (described->stages[i].number != NumberKind::integer) continue;
             products(i, described->stages[i]);
+            constants(i, described->stages[i]);
             widths(i, described->stages[i]);
         }
         return std::move(found_);
@@ -66,6 +67,26 @@ private:
                     changed.arithmetic.fraction_saving = false;
                 });
         }
+    }
+
+    /// Beside those that a rounding has.
+    void constants(std::size_t i, const DescribedStage& stage) {
+        if (from_.board.sum != SumChange{} || stage.stage.kind == "median") return;
+        const bool is_half_up = stage.rounding == Rounding::half_up;
+        const auto constant = [&](int eighths, std::string what, double price_bits) {
+            Hypothesis made = from_;
+            made.board.sum = {i, eighths, 0};
+            add_changed(
+                from_, std::move(made),
+                {Slot::arithmetic, i, std::move(what), "the constant that is added before the shift", price_bits},
+                found_);
+        };
+        if (is_half_up) {
+            constant(4, "the constant of the rounding twice as large, or added twice", 4.5);
+            constant(-2, "the constant of the rounding half as large", 5.5);
+        }
+        constant(8, "one LSB of the result added before it is shortened", 6.0);
+        constant(-8, "one LSB of the result taken off before it is shortened", 7.0);
     }
 
     void widths(std::size_t i, const DescribedStage& stage) {

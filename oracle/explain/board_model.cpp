@@ -10,27 +10,14 @@ namespace {
 constexpr std::size_t piece_samples = 4096;
 
 std::unique_ptr<Twin> twin_of(const BoardDescription& board, const Signal& signal) {
-    const auto described = describe(board.filter, signal.input, signal.output, signal.output_per_input).described;
-    return described ? make_twin(*described) : nullptr;
-}
-
-/// Which words of a state a reset leaves.
-std::vector<std::int64_t> left_by(ResetKind kind, std::vector<std::int64_t> words) {
-    const auto half = words.begin() + static_cast<std::ptrdiff_t>(words.size() / 2);
-    switch (kind) {
-        case ResetKind::first_half:
-            std::fill(words.begin(), half, 0);
-            break;
-        case ResetKind::second_half:
-            std::fill(half, words.end(), 0);
-            break;
-        case ResetKind::all_but_sum:
-            if (!words.empty()) std::fill(words.begin(), words.end() - 1, 0);
-            break;
-        default:
-            break;
+    auto described = describe(board.filter, signal.input, signal.output, signal.output_per_input).described;
+    if (!described) return nullptr;
+    const SumChange& sum = board.sum;
+    if (sum.stage < described->stages.size()) {
+        described->stages[sum.stage].sum_constant_eighths = sum.constant_eighths;
+        if (sum.divisor > 0) described->stages[sum.stage].divisor = sum.divisor;
     }
-    return words;
+    return make_twin(*described);
 }
 
 }  // namespace
@@ -40,6 +27,7 @@ BoardModel::BoardModel(const BoardDescription& board, const Signal& signal, std:
       input_map_(board.input),
       output_map_(board.output),
       reset_kind_(board.reset),
+      filter_(board.filter),
       input_(signal.input),
       output_(signal.output),
       twin_(std::move(twin)),
@@ -58,8 +46,10 @@ void BoardModel::reset() {
     if (reset_kind_ == ResetKind::whole || is_first_case_) {
         twin_->reset();
     } else if (reset_kind_ != ResetKind::none) {
-        twin_->set_state(left_by(reset_kind_, twin_->state()));
+        twin_->set_state(left_by(reset_kind_, filter_, twin_->state(), since_reset_));
     }
+    // A place in a ring that stays is counted on.
+    if (reset_kind_ != ResetKind::ring_start) since_reset_ = 0;
 }
 
 void BoardModel::begin_case(Start start, std::int64_t start_samples) {
@@ -110,11 +100,13 @@ void BoardModel::run(std::span<const Code> in, std::vector<Code>& out) {
     const std::size_t before = out.size();
     out.resize(before + twin_->outputs_for(in.size()));
     twin_->process(in, std::span(out).subspan(before));
+    since_reset_ += std::ssize(in);
 }
 
 Code BoardModel::run_one(Code code) {
     Code result = 0;
     twin_->process(std::span<const Code>(&code, 1), std::span<Code>(&result, 1));
+    ++since_reset_;
     return result;
 }
 

@@ -39,6 +39,8 @@ private:
     Passage passage_;
     CodeMap input_map_, output_map_;
     ResetKind reset_kind_;
+    FilterChain filter_;
+    std::int64_t since_reset_ = 0;  ///< samples that the filter got
     SampleFormat input_, output_;
     std::unique_ptr<Twin> twin_;
     std::int64_t index_ = 0;  ///< of the next sample of the case

@@ -1,7 +1,10 @@
 #include "oracle/explain/capture_fit.hpp"
 
 #include <algorithm>
+#include <cmath>
+#include <limits>
 #include <numeric>
+#include <set>
 
 #include "oracle/explain/board_model.hpp"
 
@@ -10,6 +13,11 @@ namespace {
 
 /// Short first: most hypotheses are given up there.
 constexpr std::size_t first_piece = 64, largest_piece = 4096;
+/// One in so many.
+constexpr std::size_t most_missing_share = 64;
+/// Enough for an error to show its size, few enough for thousands of boards.
+constexpr std::size_t samples_of_miss = 512;
+constexpr double least_square_lsb2 = 0x1p-32;
 
 struct OneCase {
     std::int64_t compared = 0, equal = 0, wrong_index = -1;
@@ -37,6 +45,10 @@ OneCase run_case(BoardModel& model, const ChannelCapture& capture) {
             return result;
         }
     }
+    // A board that loses samples may lack a few at the end; one that returns nothing explains nothing.
+    const std::size_t missing = capture.response.size() - compared;
+    if (missing * most_missing_share > capture.response.size())
+        result.wrong_index = static_cast<std::int64_t>(compared);
     return result;
 }
 
@@ -80,6 +92,43 @@ void CaptureSet::order_by(const BoardDescription& declared) {
     }
     std::stable_sort(order_.begin(), order_.end(),
                      [&](std::size_t a, std::size_t b) { return first_wrong[a] < first_wrong[b]; });
+}
+
+void CaptureSet::order_by_variety() {
+    if (is_chained_) return;
+    std::vector<std::size_t> different(captures_.size());
+    for (std::size_t i = 0; i < captures_.size(); ++i) {
+        const auto& response = captures_[i].response;
+        const auto end = response.begin() + static_cast<std::ptrdiff_t>(std::min(response.size(), samples_of_miss));
+        different[i] = std::set<Code>(response.begin(), end).size();
+    }
+    std::stable_sort(order_.begin(), order_.end(),
+                     [&](std::size_t a, std::size_t b) { return different[a] > different[b]; });
+}
+
+double CaptureSet::miss_octaves(const BoardDescription& board) const {
+    const auto model = BoardModel::make(board, signal_);
+    if (model == nullptr) return std::numeric_limits<double>::infinity();
+    double octaves = 0.0;
+    std::vector<Code> out;
+    for (const ChannelCapture& capture : captures_) {
+        out.clear();
+        model->begin_case(capture.start, capture.start_samples);
+        model->process(std::span(capture.sent).first(std::min(capture.sent.size(), samples_of_miss)), out);
+        const std::size_t count = std::min(out.size(), capture.response.size());
+        double squares = 0.0;
+        for (std::size_t n = 0; n < count; ++n) {
+            const double error = static_cast<double>(out[n]) - static_cast<double>(capture.response[n]);
+            squares += error * error;
+        }
+        if (count > 0) squares /= static_cast<double>(count);
+        octaves += 0.5 * std::log2(squares + least_square_lsb2);
+    }
+    return octaves;
+}
+
+bool CaptureSet::is_exact_start(double miss) const {
+    return miss <= 0.5 * std::log2(least_square_lsb2) * static_cast<double>(captures_.size());
 }
 
 }  // namespace halflsb

@@ -29,6 +29,11 @@ struct CaptureFit {
     bool is_exact() const { return could_run && wrong_case < 0; }
 };
 
+struct Candidate {
+    Hypothesis hypothesis;
+    CaptureFit fit;  ///< until its first wrong sample
+};
+
 /// The order in which cases are looked at: those that tell most at the least cost come first.
 class CaptureSet {
 public:
@@ -41,6 +46,13 @@ public:
     CaptureFit until_first_wrong(const BoardDescription& board) const;
     /// The board as declared decides what is looked at first: the cases where it goes wrong soonest.
     void order_by(const BoardDescription& declared);
+    /// The cases with most different codes at their start first: of a board that nobody described.
+    void order_by_variety();
+    /// How far a board is from the captures, at the start of each: the sum over the cases of log2 of the rms error in
+    /// LSB, none below 2^-16. Infinite where there is no twin.
+    double miss_octaves(const BoardDescription& board) const;
+    /// What miss_octaves gives where nothing differs.
+    bool is_exact_start(double miss_octaves) const;
 
 private:
     Signal signal_;

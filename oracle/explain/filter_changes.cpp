@@ -50,37 +50,27 @@ private:
             if (other < 1) continue;
             const bool is_near = other == points - 1 || other == points + 1;
             window(other, other, is_near ? usual_bits + 1.0 : usual_bits + 3.0);
-        }
-        // Sums that are shifted: of as many products by a power of two.
-        for (int shift = 0; shift < 16; ++shift) {
-            if (points != 1 << shift) continue;
-            for (const int other : {points - 1, points + 1}) {
-                if (other >= 1) window(other, points, usual_bits);
-            }
-            for (const int divisor : {points * 2, points / 2}) {
-                if (divisor >= 1) window(points, divisor, usual_bits + 0.5);
-            }
+            if (is_near) window(other, points, usual_bits);
+            window(points, other, is_near ? usual_bits + 1.0 : usual_bits + 0.5);
         }
     }
 
     void window(int points, int divisor, double price_bits) {
+        Hypothesis made = from_;
+        FilterStage& changed = made.board.filter[stage_];
+        std::get<MovingAverage>(changed.design).points = points;
         const bool is_own = divisor == points;
-        add("a window of " + std::to_string(points) + " points" +
-                (is_own ? "" : ", divided by " + std::to_string(divisor)),
-            "the length of the ring and the comparison that ends it; the divisor or the shift of the sum", price_bits,
-            [=](FilterStage& changed) {
-                if (is_own) {
-                    std::get<MovingAverage>(changed.design).points = points;
-                    // A shift is a division by a power of two: the same numbers.
-                    if (changed.arithmetic.division == Division::shift) changed.arithmetic.division = Division::divide;
-                    return;
-                }
-                changed.design = Fir{std::vector<double>(static_cast<std::size_t>(points), 1.0 / divisor)};
-                changed.kind = "fir";
-                changed.arithmetic.division.reset();
-                changed.arithmetic.structure.reset();
-                set_coefficient_fraction_bits(changed, static_cast<int>(std::log2(divisor)));
-            });
+        // A shift is a division by a power of two: the same numbers.
+        if (changed.arithmetic.division == Division::shift) changed.arithmetic.division = Division::divide;
+        if (!is_own) {
+            if (made.board.sum != SumChange{}) return;
+            made.board.sum = {stage_, 0, divisor};
+        }
+        finish(std::move(made),
+               "a window of " + std::to_string(points) + " points" +
+                   (is_own ? "" : ", divided by " + std::to_string(divisor)),
+               "the length of the ring and the comparison that ends it; the divisor or the shift of the sum",
+               price_bits);
     }
 
     void of(const Median& median) {
@@ -258,6 +248,7 @@ private:
     }
 
     void stages() {
+        if (from_.board.sum != SumChange{}) return;  // it names a stage by its place
         for (stage_ = 0; stage_ < from_.board.filter.size(); ++stage_) {
             Hypothesis made = from_;
             made.board.filter.erase(made.board.filter.begin() + static_cast<std::ptrdiff_t>(stage_));
@@ -270,11 +261,13 @@ private:
         through.design = Fir{{1.0}};
         through.kind = "fir";
         through.arithmetic.rounding = Rounding::floor;
+        set_coefficient_fraction_bits(through, 0);
         Hypothesis made = from_;
         made.board.filter = {through};
-        made.changes.push_back({Slot::filter, 0, "the input goes past the filter",
-                                "the condition under which the filter is called", usual_bits - 1.0});
-        found_.push_back(std::move(made));
+        made.board.sum = {};
+        stage_ = 0;
+        finish(std::move(made), "the input goes past the filter", "the condition under which the filter is called",
+               usual_bits - 1.0);
     }
 
     const Hypothesis& from_;

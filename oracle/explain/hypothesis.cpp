@@ -4,8 +4,28 @@
 
 namespace halflsb {
 
+std::string_view name_of(Slot slot) {
+    switch (slot) {
+        case Slot::filter:
+            return "filter";
+        case Slot::arithmetic:
+            return "arithmetic";
+        case Slot::input:
+            return "input";
+        case Slot::output:
+            return "output";
+        case Slot::passage:
+            return "passage";
+        case Slot::reset:
+            return "reset";
+        case Slot::channels:
+            break;
+    }
+    return "channels";
+}
+
 double Hypothesis::price_bits() const {
-    double bits = 0.0;
+    double bits = open_words_bits;
     for (const Change& change : changes) bits += change.price_bits;
     return bits;
 }

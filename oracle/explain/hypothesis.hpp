@@ -9,20 +9,31 @@
 
 #include "oracle/explain/code_map.hpp"
 #include "oracle/explain/passage.hpp"
+#include "oracle/explain/reset.hpp"
 #include "oracle/filters/filter.hpp"
 
 namespace halflsb {
 
+/// What no plan can say of a stage's sums.
+struct SumChange {
+    std::size_t stage = 0;     ///< of the channel's chain, from 0
+    int constant_eighths = 0;  ///< of the last place that a sum is shortened to, added to each before
+    int divisor = 0;           ///< of a moving average in place of its points; 0: its points
+    bool operator==(const SumChange&) const = default;
+};
+
 /// Of one channel.
 struct BoardDescription {
     FilterChain filter;
-    CodeMap input, output;
-    Passage passage;
+    SumChange sum = {};
+    CodeMap input = {}, output = {};
+    Passage passage = {};
     ResetKind reset = ResetKind::whole;
     bool operator==(const BoardDescription&) const = default;
 };
 
-enum class Slot { filter, arithmetic, input, output, passage, reset };
+enum class Slot { filter, arithmetic, input, output, passage, reset, channels };
+std::string_view name_of(Slot slot);
 
 /// One step away from what was declared.
 struct Change {
@@ -35,7 +46,8 @@ struct Change {
 
 struct Hypothesis {
     BoardDescription board;
-    std::vector<Change> changes;  ///< none: the board as declared
+    std::vector<Change> changes;   ///< none: the board as declared
+    double open_words_bits = 0.0;  ///< the price of what the plan leaves open and the board says
     double price_bits() const;
     /// "floor in place of half-up; the output that wraps"
     std::string what() const;

@@ -39,13 +39,4 @@ bool has_events(PassageKind kind);
 /// The next event at or after `index`; a very large number when there is none.
 std::int64_t next_event(const Passage& passage, std::int64_t index);
 
-/// What a reset does before a case that begins with one.
-enum class ResetKind {
-    whole,
-    none,         ///< nothing: the state of the case before stays
-    first_half,   ///< only the first half of the words of the state is cleared
-    second_half,  ///< only the second half
-    all_but_sum,  ///< all but the last word: a running sum, a remainder
-};
-
 }  // namespace halflsb

@@ -15,11 +15,6 @@
 
 namespace halflsb {
 
-struct Candidate {
-    Hypothesis hypothesis;
-    CaptureFit fit;  ///< until its first wrong sample
-};
-
 /// Hypotheses that no probe tells apart.
 struct EquivalenceClass {
     std::vector<Candidate> members;  ///< cheapest first

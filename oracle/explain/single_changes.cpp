@@ -14,33 +14,27 @@ void append(std::vector<Hypothesis>& all, std::vector<Hypothesis> more) {
 }
 
 void add_code_maps(const Hypothesis& from, const Signal& signal, std::vector<Hypothesis>& all) {
-    if (from.board.input.kind == CodeMapKind::none) {
-        for (const NamedCodeMap& each : code_maps_of(signal.input)) {
+    const auto add = [&](Slot slot, CodeMap BoardDescription::*map, const SampleFormat& format, const char* where,
+                         const char* look_at) {
+        if ((from.board.*map).kind != CodeMapKind::none) return;
+        for (const NamedCodeMap& each : code_maps_of(format)) {
             Hypothesis made = from;
-            made.board.input = each.map;
-            made.changes.push_back({Slot::input, 0, "at the input: " + each.what,
-                                    "how the samples get from the driver into the filter's type", each.price_bits});
-            all.push_back(std::move(made));
+            made.board.*map = each.map;
+            add_changed(from, std::move(made), {slot, 0, where + each.what, look_at, each.price_bits}, all);
         }
-    }
-    if (from.board.output.kind == CodeMapKind::none) {
-        for (const NamedCodeMap& each : code_maps_of(signal.output)) {
-            Hypothesis made = from;
-            made.board.output = each.map;
-            made.changes.push_back({Slot::output, 0, "at the output: " + each.what,
-                                    "how the filter's results get into the words that are sent", each.price_bits});
-            all.push_back(std::move(made));
-        }
-    }
+    };
+    add(Slot::input, &BoardDescription::input, signal.input,
+        "at the input: ", "how the samples get from the driver into the filter's type");
+    add(Slot::output, &BoardDescription::output, signal.output,
+        "at the output: ", "how the filter's results get into the words that are sent");
 }
 
 void add_passages(const Hypothesis& from, std::vector<Hypothesis>& all) {
     if (from.board.passage.kind != PassageKind::plain) return;
-    const auto add = [&](const Passage& passage, std::string what, std::string look_at, double price_bits) {
+    const auto add = [&](const Passage& passage, std::string what, const char* look_at, double price_bits) {
         Hypothesis made = from;
         made.board.passage = passage;
-        made.changes.push_back({Slot::passage, 0, std::move(what), std::move(look_at), price_bits});
-        all.push_back(std::move(made));
+        add_changed(from, std::move(made), {Slot::passage, 0, std::move(what), look_at, price_bits}, all);
     };
     constexpr int most_late = 8;
     for (int late = 1; late <= most_late; ++late) {
@@ -49,13 +43,10 @@ void add_passages(const Hypothesis& from, std::vector<Hypothesis>& all) {
             "whether the result of this call or of the one before is sent, and the hand-over of the input", 4.0 + late);
     }
     for (int each = 2; each <= 4; ++each) {
+        const char* const ordinal = each == 2 ? "nd" : each == 3 ? "rd" : "th";
         for (int phase = 0; phase < each; ++phase) {
             add({PassageKind::each_nth, each, phase, 0},
-                "the filter is called with each " + std::to_string(each) +
-                    (each == 2   ? "nd"
-                     : each == 3 ? "rd"
-                                 : "th") +
-                    " sample, its output repeated",
+                "the filter is called with each " + std::to_string(each) + ordinal + " sample, its output repeated",
                 "the condition under which the filter is called", 6.0 + each);
         }
         add({PassageKind::twice, each, 0, 0},
@@ -66,17 +57,12 @@ void add_passages(const Hypothesis& from, std::vector<Hypothesis>& all) {
 
 void add_resets(const Hypothesis& from, std::vector<Hypothesis>& all) {
     if (from.board.reset != ResetKind::whole) return;
-    const auto add = [&](ResetKind kind, std::string what, double price_bits) {
+    for (const NamedReset& each : resets_of(from.board.filter)) {
         Hypothesis made = from;
-        made.board.reset = kind;
-        made.changes.push_back(
-            {Slot::reset, 0, std::move(what), "what a reset clears, and how much of it", price_bits});
-        all.push_back(std::move(made));
-    };
-    add(ResetKind::none, "a reset leaves the state as it was", 5.0);
-    add(ResetKind::first_half, "a reset clears only the inputs that are kept, or the first half of the state", 6.0);
-    add(ResetKind::second_half, "a reset clears only the second half of the state", 6.5);
-    add(ResetKind::all_but_sum, "a reset clears all but the last word of the state, such as a running sum", 6.5);
+        made.board.reset = each.kind;
+        add_changed(from, std::move(made),
+                    {Slot::reset, 0, each.what, "what a reset clears, and how much of it", each.price_bits}, all);
+    }
 }
 
 }  // namespace

@@ -23,13 +23,16 @@ void check_discard(const Plan& plan, const Case& the_case, std::vector<Refusal>&
 
 std::vector<Refusal> refusals(const Plan& plan, const Case& the_case) {
     std::vector<Refusal> found;
-    check_rate(plan, the_case, found);
-    if (!found.empty()) return found;
-    check_discard(plan, the_case, found);
-    if (!found.empty()) return found;
+    // Of a companion both were asked of its base.
+    if (!the_case.companion) {
+        check_rate(plan, the_case, found);
+        if (!found.empty()) return found;
+        check_discard(plan, the_case, found);
+        if (!found.empty()) return found;
+    }
     for (const Rule& rule : the_case.rules) {
-        // Without a reference the reader refuses the others.
-        if (!plan.filter_is_unknown || !needs_reference(kind_name(rule))) check(rule, plan, the_case, found);
+        // The reader refuses those that need a reference where there is none.
+        if (!plan.filter_is_unknown || !needs_oracle(rule)) check(rule, plan, the_case, found);
     }
     return found;
 }

@@ -13,6 +13,11 @@ RuleVerdict without_reference(const Rule& rule) {
     return {rule, Verdict::undecided, {}, {}, "the filter is unknown, so there is no reference", std::nullopt};
 }
 
+/// Of a rule whose companions nobody made (companion_case.hpp).
+RuleVerdict without_companions(const Rule& rule) {
+    return {rule, Verdict::undecided, {}, {}, "the stimulus was not sent again", std::nullopt};
+}
+
 bool is_implicit_latency(const Rule& rule) {
     const auto* latency = std::get_if<LatencyRule>(&rule.kind);
     return latency != nullptr && latency->implicit;
@@ -20,13 +25,15 @@ bool is_implicit_latency(const Rule& rule) {
 
 }  // namespace
 
-CaseJudge::CaseJudge(const Plan& plan, const Case& the_case, bool wants_plots)
+CaseJudge::CaseJudge(const Plan& plan, const Case& the_case, bool wants_plots, BaseResponse base)
     : plan_(plan),
       case_(the_case),
       rates_(plan, the_case),
       block_returned_(rates_.cycles_within(judge_block_samples) * rates_.cycle().outputs),
       sent_(plan, the_case) {
-    if (!plan.filter_is_unknown) {
+    if (the_case.companion) {
+        companion_.emplace(plan, the_case, std::move(base), wants_plots);
+    } else if (!plan.filter_is_unknown) {
         channels_.reserve(static_cast<std::size_t>(plan.signal.channels));
         for (int channel = 1; channel <= plan.signal.channels; ++channel)
             channels_.emplace_back(plan, the_case, channel, wants_plots);
@@ -74,6 +81,9 @@ void CaseJudge::add_cycles(std::span<const Code> response) {
                       one_channel(part, plan_.signal.channels, judge.channel(), one_));
         }
         for (UnchangedJudge& judge : unchanged_) judge.add(sent_.of_all(), part);
+        if (companion_ && !base_unread_) {
+            if (auto read = companion_->add(sent_, sent_samples_, part); !read) base_unread_ = read.error();
+        }
         trace_unknown(part);
         sent_samples_ += sent;
         samples_ += returned;
@@ -122,6 +132,7 @@ Outcome<void> CaseJudge::go_through_again(const ResponseReplay& replay) {
 }
 
 Outcome<CaseJudgement> CaseJudge::finish(const ResponseReplay& replay) {
+    if (base_unread_) return *base_unread_;
     bool goes_again = false;
     for (ChannelJudge& judge : channels_) goes_again = judge.begin_second_pass() || goes_again;
     if (goes_again) {
@@ -136,6 +147,8 @@ Outcome<CaseJudgement> CaseJudge::finish(const ResponseReplay& replay) {
     for (const Rule& rule : case_.rules) {
         if (std::holds_alternative<UnchangedRule>(rule.kind)) {
             judgement.rules.push_back((unchanged++)->verdict());
+        } else if (!companions_of(rule).empty()) {
+            if (!companion_) judgement.rules.push_back(without_companions(rule));
         } else if (std::holds_alternative<DeadlineRule>(rule.kind)) {
             judgement.rules.push_back((deadline++)->verdict());
         } else if (plan_.filter_is_unknown) {
@@ -145,6 +158,10 @@ Outcome<CaseJudgement> CaseJudge::finish(const ResponseReplay& replay) {
                 if (auto verdict = judge.verdict(rule)) judgement.rules.push_back(std::move(*verdict));
             }
         }
+    }
+    if (companion_) {
+        for (RuleVerdict& verdict : companion_->verdicts()) judgement.rules.push_back(std::move(verdict));
+        companion_->plot(judgement.plots);
     }
     for (const ChannelJudge& judge : channels_) judge.plot(judgement.plots);
     for (const TimeTrace& trace : traces_) trace.plot(judgement.plots);

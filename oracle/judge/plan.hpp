@@ -68,6 +68,8 @@ struct Case {
     std::optional<FilterChain> filter = {};  ///< in place of the plan's, where the rate makes another design
     std::string purpose = {};                ///< what it is there to find, for reports; "" when the plan says nothing
     bool is_standard = false;                ///< of the standard set: the plan has no case of its own
+    bool has_companions = false;             ///< cases behind it are held against what comes back for it
+    std::optional<Companion> companion = {};  ///< it is one of those
 };
 
 /// A file that the plan was read from: itself, what it includes, and what it names.
@@ -85,6 +87,7 @@ struct Plan {
     std::string file;
     Signal signal;
     FilterChain filter;  ///< as written, stages of every channel
+    std::vector<PlanPosition> filter_positions = {};  ///< where each stage stands; empty of a plan that no file has
     std::vector<Case> cases;
     Certainty certainty = {};
     bool streams_whole = false;        ///< each stimulus to its end, also when the rules of its case are decided

@@ -3,6 +3,7 @@
 #include <algorithm>
 
 #include "oracle/judge/case_rates.hpp"
+#include "oracle/judge/companion_judge.hpp"
 #include "oracle/judge/crosstalk_judge.hpp"
 #include "oracle/judge/deadline_judge.hpp"
 #include "oracle/judge/drift_judge.hpp"
@@ -25,6 +26,14 @@ namespace {
 WantedReferences wanted_by(const LatencyRule&, bool) { return {}; }
 WantedReferences wanted_by(const UnchangedRule&, bool) { return {}; }
 std::unique_ptr<RuleJudge> make_judge(const UnchangedRule&, const Rule&, const JudgedChannel&) { return nullptr; }
+template <AsksForCompanions Kind>
+WantedReferences wanted_by(const Kind&, bool) {
+    return {};
+}
+template <AsksForCompanions Kind>
+std::unique_ptr<RuleJudge> make_judge(const Kind&, const Rule&, const JudgedChannel&) {
+    return nullptr;
+}
 WantedReferences wanted_by(const DeadlineRule&, bool) { return {}; }
 std::unique_ptr<RuleJudge> make_judge(const DeadlineRule&, const Rule&, const JudgedChannel&) { return nullptr; }
 
@@ -47,7 +56,9 @@ std::unique_ptr<RuleJudge> make_judge(const Rule& rule, const JudgedChannel& cha
 }
 
 bool may_end_early(const Plan& plan, const Case& the_case) {
-    if (plan.streams_whole || plan.filter_is_unknown || CaseRates(plan, the_case).changes()) return false;
+    // Companions are held against all of it.
+    if (plan.streams_whole || plan.filter_is_unknown || the_case.has_companions || CaseRates(plan, the_case).changes())
+        return false;
     return std::all_of(the_case.rules.begin(), the_case.rules.end(), [](const Rule& rule) {
         return std::visit([](const auto& kind) { return kind.ends_early; }, rule.kind);
     });

@@ -2,6 +2,8 @@
 
 #include <algorithm>
 #include <cmath>
+#include <functional>
+#include <memory>
 #include <set>
 #include <utility>
 
@@ -33,9 +35,32 @@ std::vector<Code> twin_response(const Plan& plan, const Case& the_case, std::spa
     return response;
 }
 
+/// A board on paper: what it returns for what a case sends.
+using PaperBoard = std::function<std::vector<Code>(const Case&, std::span<const Code> sent)>;
+
+/// What the board returns for the first `length` instants of the case that this one is held against.
+BaseResponse base_of(const Plan& plan, const Case& the_case, std::int64_t length, const PaperBoard& board) {
+    BaseResponse base;
+    if (!the_case.companion) return base;
+    const auto found = std::find_if(plan.cases.begin(), plan.cases.end(),
+                                    [&](const Case& other) { return other.name == the_case.companion->base; });
+    if (found == plan.cases.end()) return base;
+    const auto channels = static_cast<std::int64_t>(plan.signal.channels);
+    std::vector<Code> sent(static_cast<std::size_t>(length * channels));
+    fill_case_codes(plan, *found, 0, sent);
+    const auto response = std::make_shared<const std::vector<Code>>(board(*found, sent));
+    // Of a case that is cut nothing beyond is asked for.
+    base.samples = returned_samples(plan, *found);
+    base.read = [response, channels](std::int64_t first, std::span<Code> codes) -> Outcome<void> {
+        std::copy_n(response->begin() + first * channels, codes.size(), codes.begin());
+        return {};
+    };
+    return base;
+}
+
 /// The kind of the first rule that fails on this response; "" when all pass.
-std::string failing_rule(const Plan& plan, const Case& the_case, const std::vector<Code>& response) {
-    CaseJudge judge(plan, the_case);
+std::string failing_rule(const Plan& plan, const Case& the_case, const std::vector<Code>& response, BaseResponse base) {
+    CaseJudge judge(plan, the_case, false, std::move(base));
     judge.add(response);
     const auto channels = static_cast<std::int64_t>(plan.signal.channels);
     const auto judgement = judge.finish([&](std::int64_t first, std::span<Code> codes) -> Outcome<void> {
@@ -144,7 +169,11 @@ Sensitivity sensitivity(const Plan& plan, const std::vector<std::size_t>& cases,
         fill_case_codes(plan, the_case, 0, sent);
         const std::vector<Code> declared = twin_response(plan, the_case, sent);
         if (result.failing_rule.empty()) {
-            result.failing_rule = failing_rule(plan, the_case, declared);
+            const PaperBoard board = [&](const Case& other, std::span<const Code> codes) {
+                return twin_response(plan, other, codes);
+            };
+            result.failing_rule =
+                declared.empty() ? "" : failing_rule(plan, the_case, declared, base_of(plan, the_case, length, board));
             if (!result.failing_rule.empty()) result.failing_case = the_case.name;
         }
         for (std::size_t i = 0; i < changes.size(); ++i) {
@@ -154,7 +183,10 @@ Sensitivity sensitivity(const Plan& plan, const std::vector<std::size_t>& cases,
             const std::vector<Code> response = changed_response(plan, the_case, changes[i], sent);
             if (response.empty() || response == declared) continue;
             count_differences(plan, response, declared, seen);
-            seen.rule = failing_rule(plan, the_case, response);
+            const PaperBoard board = [&](const Case& other, std::span<const Code> codes) {
+                return changed_response(plan, other, changes[i], codes);
+            };
+            seen.rule = failing_rule(plan, the_case, response, base_of(plan, the_case, length, board));
             seen.answer = seen.rule.empty() ? ChangeSeen::Answer::unseen : ChangeSeen::Answer::seen;
             if (!seen.rule.empty()) seen.case_name = the_case.name;
         }

@@ -101,17 +101,18 @@ struct Crossing {
     TransitionFigure instant;
 };
 
-// find(level) says which crossing is meant, as the index of its second sample, 0 when there is none.
+// find(level, shift) says which crossing is meant when all levels are shifted so far, as the index of its second
+// sample, 0 when there is none.
 template <class Find>
 Crossing crossing_at(const Course& course, double level, const Doubt& doubt, Find find) {
-    const std::size_t index = find(level);
+    const std::size_t index = find(level, 0.0);
     if (index == 0) {
         bool reaches = false;
         for (std::size_t n = 0; n < course.size() && !reaches; ++n) reaches = course.at(n) >= level;
         return {0, none(reaches ? Fault::starts_beyond : Fault::never_reaches)};
     }
     return {index, with_doubt(course.instant(level, index), doubt, [&](double shift) {
-                const std::size_t other = find(level + shift);
+                const std::size_t other = find(level + shift, shift);
                 return other == 0 ? std::nullopt : std::optional(course.instant(level + shift, other));
             })};
 }
@@ -130,29 +131,53 @@ TransitionFigure relative_to(const TransitionFigure& instant, std::int64_t origi
                 instant.figure->bound);
 }
 
-// All four, from the index of the mid crossing on and back from it.
-void find_aberrations(const Course& course, std::size_t mid, double reached, const Doubt& doubt,
-                      TransitionFigures& figures) {
-    const double noise = 100.0 * doubt.noise, bound = 100.0 * doubt.bound;
+struct Aberrations {
     double over = 0.0, under = 0.0, pre = 0.0, early = 0.0;
+};
+
+/// From sample `mid` on, and back from it; a state is reached once it is no further than `reached`.
+Aberrations aberrations_from(const Course& course, std::size_t mid, double reached) {
+    Aberrations found;
     bool was_there = false;
     for (std::size_t n = mid; n < course.size(); ++n) {
         const double z = course.at(n);
-        over = std::max(over, z - 1.0);
+        found.over = std::max(found.over, z - 1.0);
         was_there = was_there || z >= 1.0 - reached;
-        if (was_there) under = std::max(under, 1.0 - z);
+        if (was_there) found.under = std::max(found.under, 1.0 - z);
     }
     bool is_there = false;
     for (std::size_t n = mid; n-- > 0;) {
         const double z = course.at(n);
-        pre = std::max(pre, -z);
+        found.pre = std::max(found.pre, -z);
         is_there = is_there || z <= reached;
-        if (is_there) early = std::max(early, z);
+        if (is_there) found.early = std::max(found.early, z);
     }
-    figures.overshoot_percent = some(100.0 * over, noise, bound);
-    figures.undershoot_percent = some(100.0 * under, noise, bound);
-    figures.preshoot_percent = some(100.0 * pre, noise, bound);
-    figures.early_overshoot_percent = some(100.0 * early, noise, bound);
+    return found;
+}
+
+// All four. The mid crossing, and whether a state was reached, may be another one by as much as a sample is off: what
+// lies between the first and the last sample that it can be belongs to either side. The further the stretch and the
+// sooner a state counts as reached, the larger a figure, so both ends are those of the ends.
+void find_aberrations(const Course& course, double mid_level, std::size_t mid, double reached, const Doubt& doubt,
+                      TransitionFigures& figures) {
+    const double off = doubt.bound + 4.0 * doubt.noise;
+    // A start that may lie beyond the level leaves open which crossing is the first.
+    const bool starts_short = course.at(0) < mid_level - off;
+    const std::size_t down = starts_short ? course.first_up(mid_level - off, 1) : 1,
+                      up = starts_short ? course.first_up(mid_level + off, 1) : 0;
+    const std::size_t first = std::min(mid, down), last = up == 0 ? course.size() : up;
+    const Aberrations found = aberrations_from(course, mid, reached);
+    const Aberrations sooner = aberrations_from(course, first, reached + off),
+                      later = aberrations_from(course, last, reached + off),
+                      least_from_first = aberrations_from(course, first, reached - off),
+                      least_from_last = aberrations_from(course, last, reached - off);
+    const auto told = [&](double value, double most, double least) {
+        return some(100.0 * value, 100.0 * doubt.noise, 100.0 * (doubt.bound + std::max(most - value, value - least)));
+    };
+    figures.overshoot_percent = told(found.over, sooner.over, least_from_last.over);
+    figures.undershoot_percent = told(found.under, sooner.under, least_from_last.under);
+    figures.preshoot_percent = told(found.pre, later.pre, least_from_first.pre);
+    figures.early_overshoot_percent = told(found.early, later.early, least_from_first.early);
 }
 
 // Instant of the last entry into the band; none when the final stretch is not all inside.
@@ -162,12 +187,14 @@ std::optional<double> last_entry(const Course& course, double band, std::size_t 
     return course.instant(course.at(outside) > 1.0 ? 1.0 + band : 1.0 - band, outside + 1);
 }
 
-TransitionFigure settling_of(const Course& course, double band, std::size_t mid, std::size_t final_samples,
+template <class MidAt>
+TransitionFigure settling_of(const Course& course, double band, MidAt mid_at, std::size_t final_samples,
                              const Doubt& doubt) {
-    const auto entry = last_entry(course, band, mid, final_samples);
+    const auto entry = last_entry(course, band, mid_at(0.0), final_samples);
     if (!entry) return none(Fault::not_settled);
     return with_doubt(*entry, doubt, [&](double shift) {
-        return band > shift ? last_entry(course, band - shift, mid, final_samples) : std::nullopt;
+        const std::size_t mid = mid_at(shift);
+        return band > shift && mid > 0 ? last_entry(course, band - shift, mid, final_samples) : std::nullopt;
     });
 }
 
@@ -230,7 +257,9 @@ TransitionAnswer measure_transition(const TransitionQuestion& question, std::spa
     const double low_level = question.low_percent / 100.0, mid_level = question.mid_percent / 100.0,
                  high_level = question.high_percent / 100.0, band = question.band_percent / 100.0;
     figures.final_value = final_value_of(stretch, 0.5 * band * amplitude);
-    const Crossing mid = crossing_at(course, mid_level, doubt, [&](double level) { return course.first_up(level, 1); });
+    // What is found from the mid crossing moves with it: within the doubt it may be another one.
+    const auto mid_at = [&](double shift) { return course.first_up(mid_level + shift, 1); };
+    const Crossing mid = crossing_at(course, mid_level, doubt, [&](double, double shift) { return mid_at(shift); });
     figures.mid_instant = relative_to(mid.instant, question.step_index);
     if (mid.index == 0) {
         figures.low_instant = figures.high_instant = figures.duration_samples = mid.instant;
@@ -238,15 +267,17 @@ TransitionAnswer measure_transition(const TransitionQuestion& question, std::spa
         figures.preshoot_percent = figures.early_overshoot_percent = figures.settling_samples = mid.instant;
         return {figures, Fault::none};
     }
-    const Crossing low =
-        crossing_at(course, low_level, doubt, [&](double level) { return course.last_up(level, mid.index); });
-    const Crossing high =
-        crossing_at(course, high_level, doubt, [&](double level) { return course.first_up(level, mid.index); });
+    const Crossing low = crossing_at(course, low_level, doubt,
+                                     [&](double level, double shift) { return course.last_up(level, mid_at(shift)); });
+    const Crossing high = crossing_at(course, high_level, doubt, [&](double level, double shift) {
+        const std::size_t from = mid_at(shift);
+        return from == 0 ? 0 : course.first_up(level, from);
+    });
     figures.low_instant = relative_to(low.instant, question.step_index);
     figures.high_instant = relative_to(high.instant, question.step_index);
     figures.duration_samples = difference(high.instant, low.instant);
-    find_aberrations(course, mid.index, question.lsb / amplitude, doubt, figures);
-    figures.settling_samples = difference(settling_of(course, band, mid.index, final_samples, doubt), mid.instant);
+    find_aberrations(course, mid_level, mid.index, question.lsb / amplitude, doubt, figures);
+    figures.settling_samples = difference(settling_of(course, band, mid_at, final_samples, doubt), mid.instant);
     return {figures, Fault::none};
 }
 

@@ -21,6 +21,10 @@
 // Where a state lies within b or 4 s of the level, there is no such crossing, and no instant: `too_coarse`.
 // Aberrations: 100 b / amplitude and 100 s / amplitude; of noise alone the largest of n samples lies some s sqrt(2 ln
 // n) beyond the level.
+// A sample that is off can make another crossing of the 50 % level the first one, and a state reached or not: all that is
+// found from there moves with it. An instant's shifted levels begin from the 50 % level that is shifted likewise; an
+// aberration's bound holds what it is from the first and from the last sample between which that crossing can lie, b + 4
+// s either way, and with states that count as reached so much sooner or later.
 //
 // The window. A whole record is held, at most transition_most_samples (8 MiB); of a longer run the caller chooses the
 // window around the step.

@@ -14,7 +14,7 @@ namespace halflsb {
 inline constexpr std::uint32_t most_ticks_told = 0xFFFFFF;
 
 struct DeadlineRule {
-    static constexpr bool is_exact = true, ends_early = false;
+    static constexpr bool is_exact = true, ends_early = false, needs_no_oracle = true;
     std::optional<double> max_ticks;         ///< of any sample
     std::optional<double> max_period_ratio;  ///< of any sample, in sample periods
     std::optional<double> percentile;        ///< of the blocks, in (0, 100]

@@ -22,15 +22,34 @@ struct RuleKind {
 
 /// In the order of the variant.
 constexpr RuleKind kinds[] = {
-    {error_recipe, made<make_error_rule>},           {latency_recipe, made<make_latency_rule>},
-    {response_recipe, made<make_response_rule>},     {tone_recipe, made<make_tone_rule>},
-    {transition_recipe, made<make_transition_rule>}, {noise_recipe, made<make_noise_rule>},
-    {silence_recipe, made<make_silence_rule>},       {drift_recipe, made<make_drift_rule>},
-    {unchanged_recipe, made<make_unchanged_rule>},   {exact_recipe, made<make_exact_rule>},
-    {deadline_recipe, made<make_deadline_rule>},     {crosstalk_recipe, made<make_crosstalk_rule>},
+    {error_recipe, made<make_error_rule>},
+    {latency_recipe, made<make_latency_rule>},
+    {response_recipe, made<make_response_rule>},
+    {tone_recipe, made<make_tone_rule>},
+    {transition_recipe, made<make_transition_rule>},
+    {noise_recipe, made<make_noise_rule>},
+    {silence_recipe, made<make_silence_rule>},
+    {drift_recipe, made<make_drift_rule>},
+    {unchanged_recipe, made<make_unchanged_rule>},
+    {exact_recipe, made<make_exact_rule>},
+    {repeat_recipe, made<make_repeat_rule>},
+    {blocks_recipe, made<make_blocks_rule>},
+    {shift_recipe, made<make_shift_rule>},
+    {linearity_recipe, made<make_linearity_rule>},
+    {deadline_recipe, made<make_deadline_rule>},
+    {crosstalk_recipe, made<make_crosstalk_rule>},
     {headroom_recipe, made<make_headroom_rule>},
 };
 static_assert(std::size(kinds) == std::variant_size_v<decltype(Rule::kind)>);
+
+template <class Kind>
+constexpr bool has_no_oracle = requires { Kind::needs_no_oracle; };
+
+/// In the order of the variant.
+template <class... Kinds>
+std::vector<bool> oracles_wanted(const std::variant<Kinds...>*) {
+    return {!has_no_oracle<Kinds>...};
+}
 
 /// "error, latency or exact"
 std::string all_kinds() {
@@ -59,9 +78,26 @@ const std::vector<Recipe>& rule_recipes() {
 
 std::string_view kind_name(const Rule& rule) { return kinds[rule.kind.index()].recipe().name; }
 
-bool needs_reference(std::string_view kind) {
-    constexpr std::string_view without[] = {"unchanged", "deadline"};
-    return std::find(std::begin(without), std::end(without), kind) == std::end(without);
+bool needs_oracle(std::string_view kind) {
+    static const std::vector<bool> wanted = oracles_wanted(static_cast<const decltype(Rule::kind)*>(nullptr));
+    for (std::size_t i = 0; i < std::size(kinds); ++i) {
+        if (kinds[i].recipe().name == kind) return wanted[i];
+    }
+    return true;
+}
+
+bool needs_oracle(const Rule& rule) { return needs_oracle(kind_name(rule)); }
+
+std::vector<Companion> companions_of(const Rule& rule) {
+    return std::visit(
+        [](const auto& kind) -> std::vector<Companion> {
+            if constexpr (AsksForCompanions<std::decay_t<decltype(kind)>>) {
+                return companions_of(kind);
+            } else {
+                return {};
+            }
+        },
+        rule.kind);
 }
 
 Outcome<Rule> make_rule(std::string_view kind, const ParameterValues& values, const RuleContext& context) {

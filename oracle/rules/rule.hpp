@@ -2,13 +2,15 @@
 // all in rule_recipes() and nowhere else.
 //
 // A kind says two things of itself. is_exact: its figures are facts of the capture; else they are random, and it takes
-// its share of the plan's alpha. ends_early: it can be decided before the last sample.
+// its share of the plan's alpha. ends_early: it can be decided before the last sample. A kind that holds without
+// knowing what the filter should return says needs_no_oracle too.
 #pragma once
 
 #include <string_view>
 #include <variant>
 #include <vector>
 
+#include "oracle/rules/companion_rules.hpp"
 #include "oracle/rules/crosstalk_rule.hpp"
 #include "oracle/rules/deadline_rule.hpp"
 #include "oracle/rules/drift_rule.hpp"
@@ -29,7 +31,9 @@ namespace halflsb {
 
 struct Rule {
     std::variant<ErrorRule, LatencyRule, ResponseRule, ToneRule, TransitionRule, NoiseRule, SilenceRule, DriftRule,
-                 UnchangedRule, ExactRule, DeadlineRule, CrosstalkRule, HeadroomRule>
+                 UnchangedRule, ExactRule,                        //
+                 RepeatRule, BlocksRule, ShiftRule, LinearityRule,  //
+                 DeadlineRule, CrosstalkRule, HeadroomRule>
         kind;
     PlanPosition position;
 };
@@ -37,8 +41,11 @@ struct Rule {
 /// In the order of the variant.
 const std::vector<Recipe>& rule_recipes();
 std::string_view kind_name(const Rule& rule);
-/// Whether it is held against what the filter should return; else it holds for a filter that nobody documented too.
-bool needs_reference(std::string_view kind);
+/// Whether rules of the kind compare with what the filter should return.
+bool needs_oracle(std::string_view kind);
+bool needs_oracle(const Rule& rule);
+/// What the rule has sent beside its case; the base is not named yet. Of most kinds nothing.
+std::vector<Companion> companions_of(const Rule& rule);
 
 /// An Error's place is the name of the parameter to blame. Bands arrive as rows of
 /// {from_hz, to_hz, min_db or -inf, max_db or +inf}.

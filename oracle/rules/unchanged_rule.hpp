@@ -15,7 +15,7 @@ namespace halflsb {
 
 /// The response equals that of an accepted run, bit for bit or within a limit; needs no oracle.
 struct UnchangedRule {
-    static constexpr bool is_exact = true, ends_early = false;
+    static constexpr bool is_exact = true, ends_early = false, needs_no_oracle = true;
     std::string baseline;                              ///< folder below the root
     std::optional<Limit> largest;                      ///< none: bit for bit
     std::shared_ptr<const AcceptedResponse> accepted;  ///< of the case; nullptr: the baseline has none

@@ -20,7 +20,10 @@ constexpr int interrupted = 130;
 
 const std::vector<ExitStatus>& exit_statuses() {
     static const std::vector<ExitStatus> table = {
-        {passed, "every rule of every selected case passed", {"all cases ran and passed"}, "nothing to do"},
+        {passed,
+         "every rule of every selected case passed",
+         {"all cases ran and passed", "explain: what the board does is found, to the bit"},
+         "nothing to do"},
         {rule_failed,
          "a rule failed on a valid capture",
          {"the response differs from the reference by more than a limit", "the latency is not the expected one",
@@ -29,7 +32,8 @@ const std::vector<ExitStatus>& exit_statuses() {
         {undecided,
          "a rule could not be decided, none failed",
          {"the response fits the reference at no lag", "the stimulus has no power where a rule asks",
-          "there is no baseline yet that unchanged could compare with"},
+          "there is no baseline yet that unchanged could compare with",
+          "explain: nothing reproduces the captures, or more than one cause does"},
          "the report says what was missing; choose a stimulus that tells"},
         {bench,
          "the bench: something could not be captured, no rule failed",
@@ -66,6 +70,14 @@ const std::vector<ExitStatus>& exit_statuses() {
          "run is not whole"},
     };
     return table;
+}
+
+int exit_status_of(const Explanation& explanation) {
+    const auto is_told = [](const ExplainedChannels& one) {
+        return one.finding.kind == FindingKind::as_declared || one.finding.kind == FindingKind::found;
+    };
+    const auto& channels = explanation.channels;
+    return !channels.empty() && std::all_of(channels.begin(), channels.end(), is_told) ? passed : undecided;
 }
 
 int exit_status_of(const Error& error) {

@@ -6,6 +6,7 @@
 #include <string_view>
 #include <vector>
 
+#include "runner/world/explanation.hpp"
 #include "runner/world/result.hpp"
 
 namespace halflsb {
@@ -28,6 +29,9 @@ int exit_status_of(const RunResult& run);
 /// Of captures that were judged again: 1 outranks 3 outranks 2 outranks 0 as above. What had ended the run while it was
 /// captured is no interruption of the judging: cases that were never captured are the bench's.
 int exit_status_of_judgement(const RunResult& run);
+
+/// Of an explanation: 2 where the captures do not decide what explains some channel.
+int exit_status_of(const Explanation& explanation);
 
 /// Of several runs in one call, from that of each: 130, 73, 70, 65 and 64 before 1, then 3, 2, 0.
 int exit_status_of_all(const std::vector<int>& statuses);

@@ -132,6 +132,10 @@ const std::vector<CommandSpec>& command_table() {
          "Judges the captures of a run again, by the plan it was made with or by another; needs no board and, but "
          "for --html, writes nothing",
          "halflsb judge .halflsb/20261201T093000Z-cw7"},
+        {Command::explain, "explain", "RUN", "",
+         "Searches for what the board does otherwise than its plan says, until every sample of a run is reproduced; of "
+         "a good run whose plan leaves it open, the arithmetic; needs no board and writes nothing",
+         "halflsb explain .halflsb/20261201T093000Z-cw7"},
         {Command::accept, "accept", "RUN", "",
          "Keeps the responses of a good run as the baseline that its plan's unchanged rules compare with",
          "halflsb accept .halflsb/20261201T093000Z-cw7"},
@@ -146,8 +150,8 @@ const std::vector<CommandSpec>& command_table() {
 }
 
 const std::vector<OptionSpec>& option_table() {
-    constexpr Command check = Command::check, judge = Command::judge, accept = Command::accept,
-                      predict = Command::predict, ports = Command::ports;
+    constexpr Command check = Command::check, judge = Command::judge, explain = Command::explain,
+                      accept = Command::accept, predict = Command::predict, ports = Command::ports;
     static const std::vector<OptionSpec> table = {
         {"--rig",
          "",
@@ -165,20 +169,20 @@ const std::vector<OptionSpec>& option_table() {
          "every case",
          "Only this case; the exact name, or a pattern in which * stands for any characters and ? for one; may be "
          "repeated",
-         {check, judge, predict},
+         {check, judge, explain, predict},
          {},
          "",
-         {check, judge, predict},
+         {check, judge, explain, predict},
          take_case},
         {"--label",
          "",
          "NAME",
          "whatever their labels",
          "Only cases with this label; repeated: with any of them; beside --case a case must match both",
-         {check, judge, predict},
+         {check, judge, explain, predict},
          {},
          "",
-         {check, judge, predict},
+         {check, judge, explain, predict},
          take_label},
         {"--all",
          "",
@@ -195,8 +199,8 @@ const std::vector<OptionSpec>& option_table() {
          "TIME",
          "as long as it takes",
          "Only as many cases, from the first on, as this time on the wire is enough for: 60s, 5min, 2h; says what is "
-         "not covered then",
-         {check},
+         "not covered then; explain: ends the search after this time with the best so far",
+         {check, explain},
          {},
          "",
          {},
@@ -287,7 +291,7 @@ const std::vector<OptionSpec>& option_table() {
          "",
          "",
          "Makes standard output one JSON document and nothing else, also when the command fails",
-         {check, judge, accept, predict, ports},
+         {check, judge, explain, accept, predict, ports},
          {},
          "",
          {},
@@ -297,7 +301,7 @@ const std::vector<OptionSpec>& option_table() {
          "",
          "",
          "Says on standard error what is being done",
-         {check, judge, accept, predict, ports},
+         {check, judge, explain, accept, predict, ports},
          {},
          "",
          {},
@@ -307,7 +311,7 @@ const std::vector<OptionSpec>& option_table() {
          "FILE",
          "none",
          "Keeps all diagnostics in this file, replacing it",
-         {check, judge, accept, predict, ports},
+         {check, judge, explain, accept, predict, ports},
          {},
          "",
          {},
@@ -317,7 +321,7 @@ const std::vector<OptionSpec>& option_table() {
          "WHEN",
          "auto",
          "auto, always or never; auto is colour on a terminal unless NO_COLOR is set or TERM is dumb",
-         {check, judge, accept, predict, ports},
+         {check, judge, explain, accept, predict, ports},
          {},
          "",
          {},

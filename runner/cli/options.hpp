@@ -14,7 +14,7 @@
 
 namespace halflsb {
 
-enum class Command { check, judge, accept, predict, ports };
+enum class Command { check, judge, explain, accept, predict, ports };
 
 struct CommandSpec {
     Command command;
@@ -29,7 +29,7 @@ struct CommandSpec {
 struct Options {
     Command command = Command::check;
     std::string plan;               ///< "" when none was given
-    std::string run;                ///< folder of a run, of judge and accept
+    std::string run;                ///< folder of a run, of judge, explain and accept
     std::vector<std::string> rigs;  ///< several only for check
     std::vector<std::string> case_patterns;
     std::vector<std::string> labels;

@@ -30,7 +30,8 @@ std::string progress_text(const Progress& progress, int columns, bool unicode) {
     const double done = std::clamp(part, 0.0, 1.0);
     const std::string head = std::to_string(progress.case_place) + "/" + std::to_string(progress.cases) + " ";
     // Rounded down: 100 % is not shown before it is true.
-    std::string tail = "  " + std::to_string(static_cast<int>(done * 100.0)) + " %";
+    std::string tail =
+        progress.samples_total > 0 ? "  " + std::to_string(static_cast<int>(done * 100.0)) + " %" : std::string();
     if (progress.elapsed_s >= trusted_after_s && done > 0.0) {
         tail += "  " + time_left_text(progress.elapsed_s * (1.0 - done) / done);
     }

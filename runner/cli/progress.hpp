@@ -15,8 +15,8 @@ struct Progress {
     std::size_t case_place = 0;  ///< among the selected cases, from 1
     std::size_t cases = 0;
     std::string name;
-    std::int64_t samples_done = 0, samples_total = 0;
-    double elapsed_s = 0.0;  ///< of this case
+    std::int64_t samples_done = 0, samples_total = 0;  ///< none in all: nobody knows how many there are
+    double elapsed_s = 0.0;                            ///< of this case
 };
 
 /// "3/8 mains hum, half scale  42 %  12 s left" in at most `columns`, without a line break. The name

@@ -4,9 +4,11 @@
 #include <deque>
 #include <iterator>
 #include <map>
+#include <set>
 
 #include "oracle/judge/admission.hpp"
 #include "oracle/judge/case_judge.hpp"
+#include "oracle/judge/companion_case.hpp"
 #include "runner/config/document.hpp"
 #include "runner/config/plan_each.hpp"
 #include "runner/config/plan_reader.hpp"
@@ -62,6 +64,32 @@ void settle_common_latency(Plan& plan, const std::vector<Rule>& common, bool is_
                      "add a case with noise (shape = \"noise\", level_ratio = 0.5, length_samples = 4096), or leave "
                      "the rule out");
     }
+}
+
+/// The companions that rules ask for, behind their bases. False: a problem was added.
+bool add_companions(Plan& plan, Problems& problems) {
+    std::vector<Case> all;
+    std::set<std::string> names;
+    for (const Case& the_case : plan.cases) names.insert(the_case.name);
+    const std::size_t before = problems.count();
+    for (const Case& the_case : plan.cases) {
+        for (Case& one : with_companions(plan, the_case)) {
+            if (one.companion && !names.insert(one.name).second) {
+                problems.add(place_of(one.rules.front().position, problems),
+                             "what this rule sends again is called " + quoted(one.name) +
+                                 ", and so is another case or another rule's",
+                             "rename that case, or keep one of the two rules");
+            }
+            all.push_back(std::move(one));
+        }
+        if (all.size() <= most_cases) continue;
+        problems.add(place_of(the_case.position, problems),
+                     "with what its rules send again the plan has more than " + std::to_string(most_cases) + " cases",
+                     "give the rules to fewer cases");
+        return false;
+    }
+    plan.cases = std::move(all);
+    return problems.count() == before;
 }
 
 /// Whether it says something under rule, be it wrong.
@@ -190,6 +218,7 @@ private:
         plan_.file = shown_name_;
         plan_.signal = *facts.signal;
         plan_.filter = facts.filters->chain;
+        plan_.filter_positions = facts.filters->positions;
         plan_.filter_is_unknown = facts.filters->is_unknown;
         const bool is_whole = problems_.count() == 0;
         for (ReadCase& read : cases) {
@@ -201,6 +230,7 @@ private:
         finish_cases(context_, plan_);
         if (problems_.count() != before) return;
         settle_common_latency(plan_, common, is_whole, problems_);
+        if (!add_companions(plan_, problems_)) return;
         if (!plan_.cases.empty() && plan_.cases.front().is_standard) {
             for (const Refusal& refusal : settle_standard_rules(plan_, common))
                 problems_.add(place_of(refusal.position, problems_), refusal.problem, refusal.remedy);

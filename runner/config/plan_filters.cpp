@@ -92,6 +92,7 @@ private:
         if (made) made = checked_words(std::move(*made));
         if (made) {
             read_.chain.push_back(std::move(*made));
+            read_.positions.push_back(context_.position_of(table.place));
             read_.stages.push_back(std::move(stage));
         } else {
             tables.refuse(made.error(), common_);

@@ -25,6 +25,7 @@ public:
 
     /// At the rate of the signal; empty when the filter is unknown.
     FilterChain chain;
+    std::vector<PlanPosition> positions;  ///< of the stages in the chain
     bool is_unknown = false;
     std::vector<Stage> stages;
 

@@ -42,8 +42,9 @@ void check_bands(const Case& the_case, Problems& problems) {
 
 void check_rules(const Plan& plan, const Case& the_case, Problems& problems) {
     if (!plan.filter_is_unknown || !the_case.rules.empty()) return;
-    problems.add(place_of(the_case.position, problems), "no rule looks at case " + quoted(the_case.name),
-                 "of an unknown filter nothing is judged without asking: add a rule of kind \"unchanged\"");
+    problems.add(
+        place_of(the_case.position, problems), "no rule looks at case " + quoted(the_case.name),
+        "of an unknown filter nothing is judged without asking: add a rule of kind \"repeat\" or \"unchanged\"");
 }
 
 }  // namespace

@@ -19,11 +19,23 @@ std::string header_text(const TableReader& outer, std::string_view list) {
     return outer.title().empty() ? "[[" + std::string(list) + "]]" : "[[case." + std::string(list) + "]]";
 }
 
+/// "unchanged, repeat or blocks"
+std::string kinds_without_reference() {
+    std::vector<std::string> kinds;
+    for (const Recipe& recipe : rule_recipes()) {
+        if (!needs_oracle(recipe.name)) kinds.push_back(quoted(recipe.name));
+    }
+    std::string text;
+    for (std::size_t i = 0; i < kinds.size(); ++i)
+        text += (i == 0 ? "" : i + 1 == kinds.size() ? " or " : ", ") + kinds[i];
+    return text;
+}
+
 void refuse_without_reference(TableReader& reader, std::string_view kind) {
-    reader.refuse(
-        reader.place_of("kind"),
-        "a rule of kind \"" + std::string(kind) + "\" needs a reference, and the filter is unknown",
-        "kinds \"unchanged\" and \"deadline\" hold without one; or say in [[filter]] what the firmware computes");
+    reader.refuse(reader.place_of("kind"),
+                  "a rule of kind \"" + std::string(kind) + "\" needs a reference, and the filter is unknown",
+                  "rules of kind " + kinds_without_reference() +
+                      " hold without one; or say in [[filter]] what the firmware computes");
 }
 
 }  // namespace
@@ -39,7 +51,7 @@ ReadRules read_rules(ReadContext& context, TableReader& outer, const PlanFacts& 
         if (recipe == nullptr) continue;
         const ParameterValues values = reader.parameters(*recipe);
         reader.refuse_unknown_keys();
-        if (facts.filters != nullptr && facts.filters->is_unknown && needs_reference(recipe->name))
+        if (facts.filters != nullptr && facts.filters->is_unknown && needs_oracle(recipe->name))
             refuse_without_reference(reader, recipe->name);
         if (recipe->name == "latency") {
             if (first_latency != nullptr) {

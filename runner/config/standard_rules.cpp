@@ -37,10 +37,22 @@ std::vector<Refusal> settle_standard_rules(Plan& plan, const std::vector<Rule>& 
                                 "add a [[case]] whose stimulus can: " + why->remedy});
         }
     }
+    for (Case& the_case : plan.cases) {
+        the_case.has_companions = std::any_of(plan.cases.begin(), plan.cases.end(), [&](const Case& other) {
+            return other.companion && other.companion->base == the_case.name && !other.rules.empty();
+        });
+    }
     std::erase_if(plan.cases, [](const Case& the_case) {
-        return std::all_of(the_case.rules.begin(), the_case.rules.end(), is_implicit);
+        return !the_case.has_companions && std::all_of(the_case.rules.begin(), the_case.rules.end(), is_implicit);
     });
-    if (plan.cases.empty() && problems.empty() && !dropped.empty()) {
+    // Its companions alone would judge no filter.
+    const bool is_judged = std::any_of(plan.cases.begin(), plan.cases.end(), [&](const Case& the_case) {
+        return std::any_of(the_case.rules.begin(), the_case.rules.end(), [&](const Rule& rule) {
+            const auto is_same = [&](const Rule& asked) { return asked.position == rule.position; };
+            return std::any_of(common.begin(), common.end(), is_same) || (!the_case.companion && !is_implicit(rule));
+        });
+    });
+    if (!is_judged && problems.empty() && !dropped.empty()) {
         problems.push_back(
             {{plan.file, 1, 1},
              "the plan has no [[case]], and the standard set has no limit for this filter: " + dropped.front().problem,

@@ -72,6 +72,7 @@ public:
         add_after_loud();
         add_full_scale();
         add_tail();
+        add_again();
         add_channels();
         add_levels();
         add_long_run();
@@ -228,6 +229,14 @@ private:
         const std::int64_t loud = std::max<std::int64_t>(memory_, 512);
         add_silent("silence after noise", "a limit cycle, a dead band, a value that stays",
                    sequence({at_level(placed("noise", loud), quiet_level()), placed("silence", 2 * memory_ + 512)}));
+    }
+
+    /// Short: it travels three times in all, once of them in many small frames. 7 samples divide no block that a board
+    /// is likely to take.
+    void add_again() {
+        add("noise, sent again", "the response that the next two are compared with",
+            at_level(placed("noise", memory_ + 1024), quiet_level()));
+        text_ += "[[case.rule]]\nkind = \"repeat\"\n[[case.rule]]\nkind = \"blocks\"\nblock_samples = [7]\n\n";
     }
 
     void add_channels() {

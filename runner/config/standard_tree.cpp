@@ -15,15 +15,16 @@ std::vector<TomlValue> rules_of(const TomlValue& table) {
 std::vector<TomlValue> held_rules(const TomlValue& table, const Plan& plan, const std::vector<TomlValue>& written,
                                   const ReadContext& context) {
     const std::string& name = table.find("name")->value.text;
-    const auto found =
-        std::find_if(plan.cases.begin(), plan.cases.end(), [&](const Case& the_case) { return the_case.name == name; });
     std::vector<TomlValue> held;
-    if (found == plan.cases.end()) return held;
     for (const TomlValue& rule : written) {
         const PlanPosition position = context.position_of(rule.place);
-        if (std::any_of(found->rules.begin(), found->rules.end(),
-                        [&](const Rule& asked) { return asked.position == position; }))
-            held.push_back(rule);
+        const bool is_held = std::any_of(plan.cases.begin(), plan.cases.end(), [&](const Case& the_case) {
+            // What a rule has sent again holds the rule.
+            if (the_case.name != name && !(the_case.companion && the_case.companion->base == name)) return false;
+            return std::any_of(the_case.rules.begin(), the_case.rules.end(),
+                               [&](const Rule& asked) { return asked.position == position; });
+        });
+        if (is_held) held.push_back(rule);
     }
     return held;
 }

@@ -1,5 +1,6 @@
 #include "runner/record/json_answer.hpp"
 
+#include "runner/record/explanation_json.hpp"
 #include "runner/record/json_parts.hpp"
 #include "runner/record/json_text.hpp"
 #include "runner/record/prediction_json.hpp"
@@ -97,6 +98,10 @@ void JsonAnswer::set_prediction(const Prediction& prediction) {
     prediction_ = json_value_text(prediction_json(prediction), 1);
 }
 
+void JsonAnswer::add_explanation(const Explanation& explanation) {
+    explanations_.push_back(json_value_text(explanation_json(explanation), 2));
+}
+
 std::string JsonAnswer::text(int exit_status) const {
     const Json head = {{"format", command_.empty() ? "halflsb" : "halflsb " + command_},
                        {"format_version", json_answer_version},
@@ -116,6 +121,10 @@ std::string JsonAnswer::text(int exit_status) const {
     if (command_ == "accept") {
         add("baselines", "[]");
         fill_last_array(whole, "", baselines_, 2);
+    }
+    if (command_ == "check" || command_ == "explain") {
+        add("explanations", "[]");
+        fill_last_array(whole, "", explanations_, 2);
     }
     if (command_ == "check" || command_ == "judge") {
         // Not indented: they are the bytes of run.json.

@@ -8,6 +8,7 @@
 #include <utility>
 #include <vector>
 
+#include "runner/world/explanation.hpp"
 #include "runner/world/prediction.hpp"
 #include "runner/world/result.hpp"
 #include "stimuli/outcome.hpp"
@@ -71,13 +72,14 @@ public:
     void add_baseline(const AcceptedBaseline& baseline);
     void set_ports(const std::vector<ListedPort>& ports);
     void set_prediction(const Prediction& prediction);
+    void add_explanation(const Explanation& explanation);
 
     std::string text(int exit_status) const;
 
 private:
     std::string command_, tool_version_;
     std::optional<Error> error_;
-    std::vector<std::string> problems_, runs_, baselines_;
+    std::vector<std::string> problems_, runs_, baselines_, explanations_;
     std::string list_ = "null", prediction_ = "null", ports_ = "[]";  ///< rendered
 };
 

@@ -65,10 +65,23 @@ T read_choice(const JsonField& field, const T (&choices)[count]) {
     return choices[0];
 }
 
+std::optional<Companion> read_companion(const JsonField& field) {
+    if (field.is_null()) return std::nullopt;
+    constexpr std::int64_t most = std::numeric_limits<std::int32_t>::max();
+    Companion companion;
+    companion.base = field.at("base").text();
+    field.at("terms").each([&](const JsonField& term) {
+        companion.terms.push_back({term.at("gain").whole(-most, most), term.at("delay_samples").whole(0, most)});
+    });
+    const JsonField block = field.at("block_samples");
+    if (!block.is_null()) companion.block_samples = block.whole(1, most);
+    return companion;
+}
+
 /// Records of before have none.
 std::optional<Spread> read_spread(const JsonField& stream, const char* key) {
-    if (!stream.has(key) || stream.at(key).is_null()) return std::nullopt;
-    const JsonField field = stream.at(key);
+    const JsonField field = stream.at_or_null(key);
+    if (field.is_null()) return std::nullopt;
     return Spread{field.at("median").number(), field.at("percentile_99").number(), field.at("largest").number()};
 }
 
@@ -84,6 +97,8 @@ CaseResult read_case(const JsonField& field) {
     result.rate_hz = field.at("rate_hz").number_or_none();
     result.start = read_choice(field.at("start"), {Start::reset, Start::flush, Start::running});
     result.start_samples = field.at("start_samples").whole(0, most_samples);
+    // Runs that were recorded before there were companions have none.
+    result.companion = read_companion(field.at_or_null("companion"));
     field.at("settings").each_member([&](const std::string& name, const JsonField& value) {
         using Limits = std::numeric_limits<std::int32_t>;
         result.settings.push_back({name, static_cast<std::int32_t>(value.whole(Limits::min(), Limits::max())), {}});
@@ -106,7 +121,7 @@ CaseResult read_case(const JsonField& field) {
     result.started_utc = field.at("started_utc").text_or_empty();
     result.elapsed_s = field.at("elapsed_s").number_or_none().value_or(0.0);
     read_capture(field.at("capture"), result.capture_file, result.capture_sha256);
-    if (field.has("ticks")) read_capture(field.at("ticks"), result.ticks_file, result.ticks_sha256);
+    if (!field.at_or_null("ticks").is_null()) read_capture(field.at("ticks"), result.ticks_file, result.ticks_sha256);
     field.at("attempts").each([&](const JsonField& attempt) {
         AttemptResult made;
         if (auto invalid = read_error(attempt.at("invalid"))) made.invalid = *invalid;
@@ -147,7 +162,7 @@ void read_board(const JsonField& field, BoardFacts& board) {
     board.block_samples = static_cast<int>(field.at("block_samples").whole(0, most));
     board.credit_blocks = static_cast<int>(field.at("credit_blocks").whole(0, most));
     board.tick_hz = static_cast<std::uint32_t>(field.at("tick_hz").whole(0, std::numeric_limits<std::uint32_t>::max()));
-    if (field.has("tick_bits")) board.tick_bits = static_cast<int>(field.at("tick_bits").whole(0, 255));
+    if (!field.at_or_null("tick_bits").is_null()) board.tick_bits = static_cast<int>(field.at("tick_bits").whole(0, 255));
 }
 
 /// "u12, left-justified" without the layout.

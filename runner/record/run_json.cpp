@@ -135,6 +135,17 @@ Json attempt_json(const AttemptResult& attempt) {
             {"capture", capture_json(attempt.capture_file, attempt.capture_sha256)}};
 }
 
+/// The texts for people follow from the rest.
+Json companion_json(const std::optional<Companion>& companion) {
+    if (!companion) return nullptr;
+    Json terms = Json::array();
+    for (const CompanionTerm& term : companion->terms)
+        terms.push_back({{"gain", term.gain}, {"delay_samples", term.delay_samples}});
+    return {{"base", text_json(companion->base)},
+            {"terms", std::move(terms)},
+            {"block_samples", companion->block_samples > 0 ? Json(companion->block_samples) : Json(nullptr)}};
+}
+
 /// How a case was captured.
 Json case_json(const CaseResult& result) {
     const StimulusFacts& stimulus = result.stimulus;
@@ -152,6 +163,7 @@ Json case_json(const CaseResult& result) {
             {"rate_hz", number_json(result.rate_hz)},
             {"start", name_of(result.start)},
             {"start_samples", result.start_samples},
+            {"companion", companion_json(result.companion)},
             {"settings", std::move(settings)},
             {"stream", stream_json(result.stream)},
             {"started_utc", text_json(result.started_utc)},

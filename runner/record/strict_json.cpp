@@ -68,6 +68,13 @@ void JsonField::refuse(const std::string& what) const {
     if (problem_->empty()) *problem_ = (place_.empty() ? "the document" : place_) + " " + what;
 }
 
+JsonField JsonField::at_or_null(const char* key) const {
+    static const Json null;
+    if (value_ != nullptr && value_->is_object() && !value_->contains(key))
+        return {&null, place_.empty() ? std::string(key) : place_ + "." + key, *problem_};
+    return at(key);
+}
+
 JsonField JsonField::at(const char* key) const {
     const std::string place = place_.empty() ? key : place_ + "." + key;
     if (value_ == nullptr) return {nullptr, place, *problem_};

@@ -27,8 +27,8 @@ public:
 
     /// Of an object; a key that is not there is a problem.
     JsonField at(const char* key) const;
-    /// Of an object: a key that older records lack.
-    bool has(const char* key) const { return value_ != nullptr && value_->is_object() && value_->contains(key); }
+    /// Of an object; null where the key is not there.
+    JsonField at_or_null(const char* key) const;
     bool is_null() const { return value_ == nullptr || value_->is_null(); }
     std::string text() const;
     /// "" for null.

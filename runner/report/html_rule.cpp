@@ -85,6 +85,7 @@ std::string neighbours(const Neighbourhood& around, const Signal& signal) {
 std::string against(const RuleVerdict& verdict) {
     if (verdict.reference.empty()) return "";
     if (verdict.reference == "accepted") return "against the accepted run, ";
+    if (verdict.reference == "base") return "against the response of its base, ";
     return "against the " + verdict.reference + " reference, ";
 }
 

@@ -169,10 +169,10 @@ std::string rule_block(const RuleVerdict& verdict, const Signal& signal, const T
 
     std::string out = std::string(block_indent, ' ') + rule_title(verdict) + ": " +
                       painted(style, ink_of(verdict.verdict), name_of(verdict.verdict)) + "\n";
-    std::string asked = verdict.reference.empty() ? ""
-                        : verdict.reference == "accepted"
-                            ? "against the accepted run, "
-                            : "against the " + printable(verdict.reference) + " reference, ";
+    std::string asked = verdict.reference.empty()         ? ""
+                        : verdict.reference == "accepted" ? "against the accepted run, "
+                        : verdict.reference == "base"     ? "against the response of its base, "
+                                                      : "against the " + printable(verdict.reference) + " reference, ";
     asked += implicit ? "asked of every case" : "asked at " + printable(to_text(verdict.rule.position));
     out += wrapped(style, asked, inner_indent);
     if (!verdict.reason.empty()) out += wrapped(style, printable_lines(verdict.reason), inner_indent);

@@ -97,6 +97,8 @@ struct CaseResult {
     std::string rerun;                    ///< the command that repeats this case alone
     std::optional<double> rate_hz;        ///< of the case, where it is not the signal's
     double returned_per_sent = 1.0;       ///< rate of the response over that of the stimulus
+    /// It was held against another case's capture; read from a record without its texts for people.
+    std::optional<Companion> companion = {};
 };
 
 /// A case of the plan, and what it is there to find.

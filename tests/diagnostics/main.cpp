@@ -29,6 +29,7 @@ int main() {
     record_chapter(page);
     judge_chapter(page);
     verdict_chapter(page);
+    companion_chapter(page);
     device_chapter(page);
     return page.is_complete() ? 0 : 1;
 }

@@ -61,6 +61,7 @@ void wire_chapter(Page& page);
 void record_chapter(Page& page);
 void judge_chapter(Page& page);
 void verdict_chapter(Page& page);
+void companion_chapter(Page& page);
 void device_chapter(Page& page);
 
 }  // namespace halflsb::diagnostics

@@ -117,6 +117,9 @@ std::string Workshop::said_by(const std::vector<std::string>& arguments, bool re
         case Command::judge:
             judge_command(options, desk);
             break;
+        case Command::explain:
+            explain_command(options, desk);
+            break;
         case Command::accept:
             accept_command(options, desk);
             break;

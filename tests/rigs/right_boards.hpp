@@ -16,6 +16,7 @@
 #include "oracle/arithmetic/twin.hpp"
 #include "oracle/judge/admission.hpp"
 #include "oracle/judge/case_judge.hpp"
+#include "oracle/judge/companion_case.hpp"
 #include "rigs/virtual-board/clean_decisions.hpp"
 #include "runner/config/plan_file.hpp"
 #include "runner/config/standard_set.hpp"
@@ -86,7 +87,8 @@ inline Returned firmware_returns(const board::FilterParts& parts, const Plan& pl
     parts.reset();
     for (std::size_t first = 0; first < length;) {
         // Whole rate cycles, as the runner sends.
-        const std::size_t count = std::min<std::size_t>(length - first, 240);
+        const auto most = static_cast<std::size_t>(parts.process_rate ? 240 : sent_block_samples(the_case, 240));
+        const std::size_t count = std::min(length - first, most);
         const auto codes = std::span(sent).subspan(first * channels, count * channels);
         std::vector<std::byte> in(codes.size() * in_format.word_bytes());
         std::vector<std::byte> out(codes.size() * out_format.word_bytes() * parts.up);
@@ -158,7 +160,38 @@ private:
     std::vector<RightBoard> boards_;
 };
 
-/// Signal and filters of a random plan, under the standard set; nothing where that has none.
+/// How a board rounds that has no twin and rounds once: as it is said, if it is. nullopt: said for more than a rounding
+/// at the end, and what else rounds nobody knows.
+inline std::optional<Rounding> rounding_of_once(const DescribedChain& chain) {
+    const auto is_said = [](const DescribedStage& stage) { return stage.rounding_is_said; };
+    if (std::none_of(chain.stages.begin(), chain.stages.end(), is_said)) return Rounding::half_up;
+    const DescribedStage& stage = chain.stages.front();
+    const bool rounds_once = chain.stages.size() == 1 && std::holds_alternative<Fir>(stage.stage.design) &&
+                             stage.rounding_at != RoundingAt::product && !stage.fraction_saving;
+    return rounds_once ? std::optional(stage.rounding) : std::nullopt;
+}
+
+inline bool has_twin(const Plan& plan, const Case& the_case) {
+    for (int channel = 1; channel <= plan.signal.channels; ++channel) {
+        const auto described = described_channel(plan, the_case, channel);
+        if (!described || described->missing || !make_twin(*described)) return false;
+    }
+    return true;
+}
+
+/// Of all channels; nothing where not all of them are known to round the same way.
+inline std::optional<Rounding> rounding_of_once(const Plan& plan, const Case& the_case) {
+    std::optional<Rounding> all;
+    for (int channel = 1; channel <= plan.signal.channels; ++channel) {
+        const auto described = described_channel(plan, the_case, channel);
+        const auto one = described ? rounding_of_once(*described) : std::optional(Rounding::half_up);
+        if (!one || (all && *all != *one)) return std::nullopt;
+        all = one;
+    }
+    return all;
+}
+
+/// Signal and filters of a random plan, under the standard set; nothing where that has none, or no board is known.
 inline std::optional<RightBoard> random_plan_board(std::uint32_t seed) {
     random_plans::RandomPlan plan = random_plans::Generator(seed).plan();
     std::erase_if(plan.tables, [](const random_plans::Table& table) {
@@ -169,10 +202,13 @@ inline std::optional<RightBoard> random_plan_board(std::uint32_t seed) {
     auto read = read_plan("plan.toml", files);
     if (!std::holds_alternative<Plan>(read)) return std::nullopt;
     RightBoard board{"random plan " + std::to_string(seed) + ":\n" + plan.text(), std::get<Plan>(std::move(read)), {}};
+    for (const Case& the_case : board.plan.cases) {
+        if (!rounding_of_once(board.plan, the_case) && !has_twin(board.plan, the_case)) return std::nullopt;
+    }
     board.respond = [](const Plan& of, const Case& the_case) {
         auto made = twin_returns(of, the_case);
-        // Where the rounding is not said, what rounds once is one of the right boards.
-        return made ? *made : Returned{right_response(of, the_case), false};
+        // Where no twin is, what rounds once is one of the right boards.
+        return made ? *made : Returned{right_response(of, the_case, *rounding_of_once(of, the_case)), false};
     };
     return board;
 }

@@ -56,9 +56,8 @@ inline Case a_case(const Plan& plan, const std::string& shape, const ParameterVa
     return made;
 }
 
-/// What a right board returns: the declared reference of each channel, rounded once, half up; the codes of an
-/// instant adjacent.
-inline std::vector<Code> right_response(const Plan& plan, const Case& the_case) {
+/// What a right board returns: the declared reference of each channel, rounded once; the codes of an instant adjacent.
+inline std::vector<Code> right_response(const Plan& plan, const Case& the_case, Rounding rounding = Rounding::half_up) {
     const auto length = static_cast<std::size_t>(the_case.stimulus->length_samples());
     const auto channels = static_cast<std::size_t>(plan.signal.channels);
     const auto returned = static_cast<std::size_t>(returned_samples(plan, the_case));
@@ -72,7 +71,7 @@ inline std::vector<Code> right_response(const Plan& plan, const Case& the_case) 
                         plan.signal.output_per_input)
             ->process(in, out);
         for (std::size_t n = 0; n < returned; ++n)
-            codes[n * channels + c] = code_of(plan.signal.output, out[n], Rounding::half_up);
+            codes[n * channels + c] = code_of(plan.signal.output, out[n], rounding);
     }
     return codes;
 }

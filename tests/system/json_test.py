@@ -106,6 +106,16 @@ class Json(Case):
         document = self.answer(halflsb("judge", self.folder / "none", "--json"), "judge", 65)
         self.assertEqual(document["error"]["kind"], "input")
 
+    def test_explain_of_a_run_and_of_none(self):
+        for faults, finding, status in ((("A01",), "as declared", 0), (("added-noise",), "unknown", 2), (("S01",), "found", 0)):
+            checked = self.check_json(faults=faults)
+            self.assertEqual(len(json.loads(checked.out)["explanations"]), 1)
+            (explanation,) = self.answer(halflsb("explain", self.folder / "run", "--json"), "explain", status)["explanations"]
+            self.assertEqual([channel["finding"] for channel in explanation["channels"]], [finding])
+            support.shutil.rmtree(self.folder / "run")
+        document = self.answer(halflsb("explain", self.folder / "none", "--json"), "explain", 65)
+        self.assertEqual(document["explanations"], [])
+
     def test_accept_of_a_run_and_of_one_without_the_rule(self):
         self.check_json()
         self.assertIn("unchanged", self.answer(halflsb("accept", self.folder / "run", "--json"), "accept", 65)["error"]["remedy"])

@@ -25,6 +25,11 @@ def with_planned(text, names):
     return support.sealed(json.dumps({**json.loads(text), "cases_planned": names}))
 
 
+def before_explained(text):
+    """A failing check ends with what explains it, judge does not."""
+    return text.split("explained, ")[0]
+
+
 class Judge(Case):
     def captured(self, cases=NOISE + STEP, faults=(), status=0, name="run", options=(), **more):
         with self.virtual_board(*[word for fault in faults for word in ("--fault", fault)]):
@@ -62,7 +67,7 @@ class Judge(Case):
                 self.assert_status(judged, status)
                 # The reports of the cases, from the first on, are those of check.
                 cases = lambda text: text[text.index("\n1/2  "):]
-                self.assertEqual(cases(judged.out), cases(checked.out))
+                self.assertEqual(cases(judged.out), before_explained(cases(checked.out)))
                 document = self.judge("--json")
                 self.assertEqual(verdict_of(document.out), verdict_of(written))
                 self.assertEqual(json.loads(document.out)["runs"], [json.loads(written)])
@@ -134,7 +139,7 @@ length_samples = 400000
                 judged = self.judge()
                 self.assert_status(judged, status)
                 # Behind the lines on the board, the cases' reports and the summary.
-                self.assertEqual(judged.out[judged.out.index("\n1/"):], checked.out[checked.out.index("\n1/"):])
+                self.assertEqual(judged.out[judged.out.index("\n1/"):], before_explained(checked.out[checked.out.index("\n1/"):]))
                 document = self.judge("--json")
                 self.assertEqual(json.loads(document.out)["runs"], [json.loads(written)])
                 self.assertEqual(verdict_of(document.out), verdict_of(written))

@@ -126,3 +126,33 @@ TEST_CASE("limit cycle: twins that fall silent stay within the bound", "[arithme
     }
     CHECK(sounding > 20);
 }
+
+// Transposed, each product shortened: the state has 17 fraction bits, the output none, and what the state loses there
+// comes back for ever. Boards 4011 and 4264 of the right ones, that were to be silent.
+TEST_CASE("limit cycle: a state that is shortened on its way to the output is not silent", "[arithmetic]") {
+    StageArithmetic said;
+    said.rounding_at = RoundingAt::product;
+    said.structure = Structure::transposed_2;
+    said.state_bits = 64;
+    const auto bound_and_last = [&](const BiquadSection& section, Rounding rounding, int state_bits,
+                                    std::string_view format) {
+        said.rounding = rounding;
+        said.state_fraction_bits = state_bits;
+        FilterStage stage{BiquadCascade{{section}}, 15, said, "biquad-cascade", {}};
+        const DescribedChain chain = *describe({stage}, *sample_format(format), *sample_format(format), 1.0).described;
+        std::vector<Code> words(2000, 0);
+        words[0] = 100;
+        return std::pair(silence_bound(chain, 0), twin_values(chain, words).back());
+    };
+    const auto [stands, last] =
+        bound_and_last({-0.500701904296875, 0.163879394531250, -0.310546875, -1.316864013671875, 0.636077880859375},
+                       Rounding::half_up, 17, "i16");
+    CHECK(last != 0.0);
+    CHECK((stands.lower <= last && stands.upper >= last));
+    // One error of -1 .. 0 through 1 / (1 + 0.25 z^-1): 16/15 and -4/15, and the states' steps of 2^-34 are nothing.
+    const SilenceBound floored =
+        bound_and_last({-0.96875, -0.3828125, 0.0, 0.25, 0.0}, Rounding::floor, 34, "q7").first;
+    CHECK_THAT(floored.lower / floored.step, Catch::WithinAbs(-16.0 / 15.0, 1e-6));
+    CHECK_THAT(floored.upper / floored.step, Catch::WithinAbs(4.0 / 15.0, 1e-6));
+    CHECK(floored.lowest_code == -1);
+}

@@ -107,6 +107,50 @@ TEST_CASE("rounding error: mean and variance are those of all remainders", "[ari
     CHECK(rounding_error(Rounding::half_up, {256.0}).variance == (1.0 - 1.0 / 65536.0) / 12.0);
 }
 
+// Even words alone: the multiples of 2 / parts; with an odd remainder that is carried, those between them. Any share of
+// them beside all multiples.
+TEST_CASE("rounding error: of words that lean to even, moments hold for any share of them", "[arithmetic]") {
+    const auto every_other = [](Rounding rounding, std::int64_t parts, std::int64_t first) {
+        Counted result;
+        double sum = 0.0, squares = 0.0, count = 0.0;
+        for (std::int64_t n = first; n < first + 8 * parts; n += 2, count += 1.0) {
+            const double e = static_cast<double>(rounded(n, parts, rounding) * parts - n) / static_cast<double>(parts);
+            sum += e;
+            squares += e * e;
+        }
+        result.mean = sum / count;
+        result.variance = squares / count;  // about 0
+        return result;
+    };
+    for (const std::int64_t parts : {2, 4, 6, 8, 10, 16, 256}) {
+        for (const Rounding rounding : every_rounding) {
+            for (const bool carries : {false, true}) {
+                RoundedNumbers numbers{static_cast<double>(parts)};
+                numbers.may_lean_to_even = true;
+                numbers.carries = carries;
+                const RoundingError error = rounding_error(rounding, numbers);
+                INFO(name_of(rounding) << ", parts " << parts << (carries ? ", carries" : ""));
+                for (const std::int64_t sign : {1, -1}) {
+                    const std::int64_t first = sign * 8 * parts - (sign < 0 ? 8 * parts : 0);
+                    const Counted even = every_other(rounding, parts, first),
+                                  odd = every_other(rounding, parts, first + 1);
+                    for (const double share : {0.0, 0.25, 0.5, 0.75, 1.0}) {
+                        if (!carries && share < 0.5) continue;
+                        const double mean = share * even.mean + (1.0 - share) * odd.mean;
+                        const double power = share * even.variance + (1.0 - share) * odd.variance;
+                        CHECK(mean >= error.mean_lowest - 1e-12);
+                        CHECK(mean <= error.mean_highest + 1e-12);
+                        CHECK(power - mean * mean <= error.variance + 1e-12);
+                    }
+                }
+            }
+        }
+    }
+    RoundedNumbers ties{2.0};
+    ties.may_lean_to_even = ties.carries = true;
+    CHECK(rounding_error(Rounding::half_even, ties).variance == 0.25);
+}
+
 TEST_CASE("rounding error: of a rounding that nobody said, and of real numbers", "[arithmetic]") {
     const RoundingError any = rounding_error(std::nullopt, {});
     CHECK((any.lowest == -1.0 && any.highest == 0.5 && any.mean_lowest == -0.5 && any.mean_highest == 0.25));

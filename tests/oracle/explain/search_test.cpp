@@ -144,6 +144,9 @@ TEST_CASE("explain: what goes wrong around the filter", "[explain]") {
         check_found(bench, Wrong::bytes_swapped, "at the input: the bytes of each word in the opposite order");
         check_found(bench, Wrong::negated, "at the input: the opposite sign");
         check_found(bench, Wrong::no_reset, "a reset leaves the state as it was");
+        check_found(bench, Wrong::half_reset, "a reset clears only");
+        check_found(bench, Wrong::not_called, "the input goes past the filter");
+        check_found(bench, Wrong::constant_twice, "the constant of the rounding twice as large");
         check_found(bench, Wrong::sample_lost, "each 100 samples from 99 on: a sample does not reach the filter");
         check_found(bench, Wrong::state_lost, "each 64 samples from 64 on: the state is that of a reset");
     }
@@ -156,6 +159,17 @@ TEST_CASE("explain: what no hypothesis reproduces is unknown, and the nearest is
         REQUIRE(result.nearest.has_value());
         CHECK_FALSE(result.nearest->fit.is_exact());
     }
+}
+
+TEST_CASE("explain: a board that returns nothing explains nothing", "[explain]") {
+    BoardDescription mute;
+    mute.filter = {average().stage};
+    mute.passage = {PassageKind::lost_shifted, 1, 3, 1};
+    const CaptureSet captures(q15_signal(), captures_of(average(), Wrong::nothing));
+    const CaptureFit fit = captures.until_first_wrong(mute);
+    CHECK(fit.could_run);
+    CHECK_FALSE(fit.is_exact());
+    CHECK(fit.wrong_index == 3);
 }
 
 TEST_CASE("explain: a search can be ended, with what was found so far", "[explain]") {

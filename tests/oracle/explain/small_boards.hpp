@@ -24,11 +24,14 @@ enum class Wrong {
     narrow_sum,        // A10
     coefficients_cut,  // C03
     shift_less,        // C05
+    constant_twice,    // A05
     a1_sign,           // C07
     taps_reversed,     // C10
     one_late,          // S01
     window_short,      // S02
+    half_reset,        // S06: what the memory has first
     no_reset,          // S07
+    not_called,        // S20
     bytes_swapped,     // N04
     negated,           // N06
     sample_lost,       // D03, each 100th
@@ -41,7 +44,8 @@ inline std::int64_t floored(std::int64_t sum, int bits) { return sum >> bits; }
 inline std::int64_t shortened(std::int64_t sum, int bits, Wrong wrong) {
     if (wrong == Wrong::floor) return floored(sum, bits);
     if (wrong == Wrong::toward_zero) return sum / (std::int64_t{1} << bits);
-    return floored(sum + (std::int64_t{1} << (bits - 1)), bits);
+    const int halves = wrong == Wrong::constant_twice ? 2 : 1;
+    return floored(sum + halves * (std::int64_t{1} << (bits - 1)), bits);
 }
 
 inline std::int64_t into_16_bits(std::int64_t number, Wrong wrong) {
@@ -54,6 +58,7 @@ class SmallBoard {
 public:
     virtual ~SmallBoard() = default;
     virtual void reset() = 0;
+    virtual void reset_half() = 0;
     virtual std::int64_t step(std::int64_t x) = 0;
 };
 
@@ -65,6 +70,7 @@ public:
         sum_ = 0;
         at_ = 0;
     }
+    void reset_half() override { std::fill_n(ring_.begin(), ring_.size() / 2, 0); }
     std::int64_t step(std::int64_t x) override {
         sum_ += x - ring_[at_];
         if (wrong_ == Wrong::narrow_sum) sum_ = static_cast<std::int16_t>(static_cast<std::uint16_t>(sum_));
@@ -92,6 +98,7 @@ public:
         if (wrong == Wrong::a1_sign) c_[3] = -c_[3];
     }
     void reset() override { x1_ = x2_ = y1_ = y2_ = 0; }
+    void reset_half() override { x1_ = x2_ = 0; }
     std::int64_t step(std::int64_t x) override {
         const int bits = wrong_ == Wrong::shift_less ? 13 : 14;
         const std::array<std::int64_t, 5> words = {x, x1_, x2_, y1_, y2_};
@@ -125,6 +132,7 @@ public:
         if (wrong == Wrong::taps_reversed) std::reverse(taps_.begin(), taps_.end());
     }
     void reset() override { std::fill(past_.begin(), past_.end(), 0); }
+    void reset_half() override { std::fill_n(past_.begin(), past_.size() / 2, 0); }
     std::int64_t step(std::int64_t x) override {
         past_.pop_back();
         past_.insert(past_.begin(), x);
@@ -141,7 +149,11 @@ private:
 
 /// What the board returns for a case, with what goes wrong around the filter.
 inline std::vector<Code> returned_by(SmallBoard& board, const std::vector<Code>& sent, Wrong wrong) {
-    if (wrong != Wrong::no_reset) board.reset();
+    if (wrong == Wrong::half_reset) {
+        board.reset_half();
+    } else if (wrong != Wrong::no_reset) {
+        board.reset();
+    }
     std::vector<Code> response;
     std::int64_t last = 0;
     for (std::size_t n = 0; n < sent.size(); ++n) {
@@ -158,6 +170,7 @@ inline std::vector<Code> returned_by(SmallBoard& board, const std::vector<Code>&
         }
         const std::int64_t y = board.step(x);
         response.push_back(static_cast<Code>(wrong == Wrong::one_late ? last : y));
+        if (wrong == Wrong::not_called) response.back() = sent[n];
         if (wrong == Wrong::looked_up) response.back() = static_cast<Code>(y - y * y * y / (std::int64_t{1} << 34));
         last = y;
     }

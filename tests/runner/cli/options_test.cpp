@@ -125,6 +125,7 @@ TEST_CASE("options: without arguments a short usage on standard error, status 64
     CHECK(answer.text ==
           "usage: halflsb check PLAN --rig RIG\n"
           "       halflsb judge RUN [PLAN]\n"
+          "       halflsb explain RUN\n"
           "       halflsb accept RUN\n"
           "       halflsb predict PLAN\n"
           "       halflsb ports\n"
@@ -165,7 +166,7 @@ TEST_CASE("options: an unknown word is answered with the nearest known one", "[c
 
 TEST_CASE("options: an option in the wrong place says where it belongs", "[cli]") {
     CHECK(error_of({"predict", "p", "--image", "f"}) == "--image is not an option of predict\n  it belongs to check");
-    CHECK(error_of({"ports", "--case=x"}) == "--case is not an option of ports\n  it belongs to check, judge, predict");
+    CHECK(error_of({"ports", "--case=x"}) == "--case is not an option of ports\n  it belongs to check, judge, explain, predict");
     CHECK(error_of({"--rig", "r", "check", "p"}) == "--rig stands before the command\n  write it behind the command");
 }
 

@@ -294,7 +294,8 @@ TEST_CASE("plan: an unknown filter is held to its baseline alone", "[config]") {
 
 TEST_CASE("plan: rules that need a reference are refused for an unknown filter", "[config]") {
     const std::string remedy =
-        "kinds \"unchanged\" and \"deadline\" hold without one; or say in [[filter]] what the firmware computes";
+        "rules of kind \"unchanged\", \"repeat\", \"blocks\", \"shift\", \"linearity\" or \"deadline\" hold without one; or say in "
+        "[[filter]] what the firmware computes";
     for (const std::string rule : {"error\"\nmax_lsb = 1", "latency\"\nlatency_samples = 0",
                                    "response\"\nbands = [{ from_hz = 1, to_hz = 9, max_db = 1 }]"}) {
         const std::string kind = rule.substr(0, rule.find('"'));
@@ -320,5 +321,6 @@ TEST_CASE("plan: what else an unknown filter cannot have", "[config]") {
     text = with(unknown_plan(), "[[rule]]\nkind = \"unchanged\"\n", "") + "[[case.rule]]\nkind = \"unchanged\"\n";
     CHECK(plan_problems(text) ==
           message(text, 14, "[[case]]", "no rule looks at case \"belt noise\"",
-                  "of an unknown filter nothing is judged without asking: add a rule of kind \"unchanged\""));
+                  "of an unknown filter nothing is judged without asking: add a rule of kind \"repeat\" or "
+                  "\"unchanged\""));
 }

@@ -58,12 +58,13 @@ TEST_CASE("standard set: a plan of [signal] and [[filter]] alone is a plan", "[c
         CHECK_FALSE(the_case.purpose.empty());
         CHECK(names.insert(the_case.name).second);
         CHECK(the_case.position.file == standard_set_name);
+        CHECK(refusals(plan, the_case).empty());
+        if (the_case.companion) continue;  // held against its base
         REQUIRE(has<ErrorRule>(the_case));
         const auto& error = std::get<ErrorRule>(the_case.rules.front().kind);
         CHECK(is_derived(error));
         // Nothing says how it rounds: no bit can be asked for.
         CHECK_FALSE(has<ExactRule>(the_case));
-        CHECK(refusals(plan, the_case).empty());
         REQUIRE(derived_limits(plan, the_case, 1));
     }
 }
@@ -76,7 +77,26 @@ TEST_CASE("standard set: what is silent at its end is held to silence", "[config
 
 TEST_CASE("standard set: with the whole arithmetic every case asks for the bits", "[config]") {
     const Plan plan = plan_of(signal_text + whole_arithmetic + mean_text);
-    for (const Case& the_case : plan.cases) CHECK(has<ExactRule>(the_case));
+    for (const Case& the_case : plan.cases) {
+        if (!the_case.companion) CHECK(has<ExactRule>(the_case));
+    }
+}
+
+TEST_CASE("standard set: a short noise is sent again, and in other blocks", "[config]") {
+    for (const std::string& filter :
+         {mean_text, low_pass_text, std::string("[[filter]]\nkind = \"median\"\npoints = 5\n")}) {
+        const Plan plan = plan_of(signal_text + filter);
+        CHECK(has<RepeatRule>(case_called(plan, "noise, sent again [repeat]")));
+        CHECK(has<BlocksRule>(case_called(plan, "noise, sent again [blocks 7]")));
+        // They must cost little beside the rest: a frame has at most 20 bytes of its own.
+        double all = 0.0, again = 0.0;
+        for (const Case& the_case : plan.cases) {
+            const auto length = static_cast<double>(the_case.stimulus->length_samples());
+            const bool is_long = !the_case.labels.empty(), in_blocks = has<BlocksRule>(the_case);
+            if (!is_long) (the_case.companion ? again : all) += in_blocks ? length * (1.0 + 10.0 / 7.0) : length;
+        }
+        CHECK(again < 0.05 * all);
+    }
 }
 
 TEST_CASE("standard set: the impulses have the ends of the range, and ties of a filter with coefficients", "[config]") {

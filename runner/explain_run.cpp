@@ -1,0 +1,209 @@
+#include "runner/explain_run.hpp"
+
+#include <algorithm>
+#include <utility>
+
+#include "oracle/explain/channel_search.hpp"
+#include "oracle/filters/channel_stages.hpp"
+#include "oracle/judge/case_rates.hpp"
+#include "runner/open_run.hpp"
+#include "runner/record/capture_file.hpp"
+#include "runner/report/people.hpp"
+#include "runner/world/interrupt.hpp"
+#include "runner/world/printable.hpp"
+
+namespace halflsb {
+namespace {
+
+/// What one channel got and returned in all cases that were looked at.
+struct ChannelCaptures {
+    std::vector<ChannelCapture> captures;
+    std::int64_t samples = 0;
+};
+
+class Gathering {
+public:
+    Gathering(const RecordedRun& record, const Plan& plan, const Files& files, const ExplainedLength& length)
+        : record_(record),
+          plan_(plan),
+          files_(files),
+          length_(length),
+          channels_(static_cast<std::size_t>(plan.signal.channels)) {}
+
+    Outcome<void> add(const Judgement::Match& match) {
+        const Case& the_case = plan_.cases[match.case_index];
+        if (const std::string why = why_not(the_case, *match.recorded); !why.empty()) {
+            left_out_.push_back(printable(the_case.name) + ": " + why);
+            state_is_known_ = false;
+            return {};
+        }
+        return read(the_case, *match.recorded);
+    }
+
+    std::vector<ChannelCaptures>& channels() { return channels_; }
+    std::vector<std::string>& left_out() { return left_out_; }
+
+private:
+    std::string why_not(const Case& the_case, const CaseResult& recorded) const {
+        if (recorded.verdict == CaseVerdict::invalid) return "its capture is not whole";
+        if (the_case.filter) return "at its rate the filter has another design";
+        if (the_case.start == Start::running && !state_is_known_)
+            return "it goes on in a state that nobody knows, the case before was not looked at to its end";
+        if (channels_.front().samples >= length_.channel_samples) return "the cases before it are enough";
+        return "";
+    }
+
+    Outcome<void> read(const Case& the_case, const CaseResult& recorded) {
+        const std::string shown = record_.path_of(recorded.capture_file);
+        const auto path = path_inside(files_, record_.folder, recorded.capture_file);
+        if (!path) return path.error();
+        auto capture = CaptureFile::open(files_, *path, shown, plan_.signal.output, plan_.signal.channels);
+        if (!capture) return capture.error();
+        const CaseRates rates(plan_, the_case);
+        const std::int64_t sent = std::min(recorded.stimulus.samples, wanted(recorded));
+        const std::int64_t returned = std::min(rates.returned(sent), capture->samples());
+        state_is_known_ = sent == recorded.stimulus.samples;
+        const auto width = channels_.size();
+        std::vector<Code> codes_in(static_cast<std::size_t>(sent) * width),
+            codes_out(static_cast<std::size_t>(returned) * width);
+        fill_case_codes(plan_, the_case, 0, codes_in);
+        if (auto got = capture->read(0, codes_out); !got) return got.error();
+        for (std::size_t c = 0; c < width; ++c) {
+            ChannelCapture one;
+            one.case_name = the_case.name;
+            one.start = the_case.start;
+            one.start_samples = the_case.start == Start::flush ? recorded.start_samples : the_case.start_samples;
+            one.sent = of_channel(codes_in, c);
+            one.response = of_channel(codes_out, c);
+            channels_[c].samples += returned;
+            channels_[c].captures.push_back(std::move(one));
+        }
+        return {};
+    }
+
+    /// Beyond the first sample that a rule blamed there is something to see.
+    std::int64_t wanted(const CaseResult& recorded) const {
+        std::int64_t samples = length_.case_samples;
+        for (const RuleVerdict& rule : recorded.rules) {
+            if (rule.first_bad) samples = std::max(samples, rule.first_bad->index + length_.case_samples / 2);
+        }
+        return samples;
+    }
+
+    std::vector<Code> of_channel(const std::vector<Code>& codes, std::size_t channel) const {
+        std::vector<Code> one;
+        for (std::size_t i = channel; i < codes.size(); i += channels_.size()) one.push_back(codes[i]);
+        return one;
+    }
+
+    const RecordedRun& record_;
+    const Plan& plan_;
+    const Files& files_;
+    const ExplainedLength& length_;
+    std::vector<ChannelCaptures> channels_;
+    std::vector<std::string> left_out_;
+    bool state_is_known_ = true;
+};
+
+bool is_same(const Finding& a, const Finding& b) {
+    if (a.kind != b.kind || a.is_inferred != b.is_inferred || a.search.classes.size() != b.search.classes.size())
+        return false;
+    if (!(a.search.declared.hypothesis.board == b.search.declared.hypothesis.board)) return false;
+    for (std::size_t i = 0; i < a.search.classes.size(); ++i) {
+        if (a.search.classes[i].members.front().hypothesis.what() !=
+            b.search.classes[i].members.front().hypothesis.what())
+            return false;
+        const auto& ours = a.search.classes[i].members;
+        const auto& others = b.search.classes[i].members;
+        if (ours.size() != others.size()) return false;
+        for (std::size_t k = 0; k < ours.size(); ++k)
+            if (!(ours[k].hypothesis.board == others[k].hypothesis.board)) return false;
+    }
+    return a.kind != FindingKind::unknown;
+}
+
+/// What one channel does to another is looked at before all that a channel may do alone.
+Finding finding_of(const Signal& signal, const std::vector<ChannelBoard>& boards, std::size_t channel,
+                   const std::function<bool()>& go_on) {
+    CaptureSet captures(signal, *boards[channel].captures);
+    const CaptureFit declared = captures.until_first_wrong(boards[channel].declared);
+    if (declared.could_run && !declared.is_exact()) {
+        if (auto cause = channel_cause(signal, boards, channel)) {
+            Finding finding;
+            finding.kind = FindingKind::found;
+            finding.search.declared = {{boards[channel].declared, {}, 0.0}, declared};
+            finding.search.classes.push_back({{std::move(*cause)}, ""});
+            return finding;
+        }
+    }
+    return find_cause(boards[channel].declared, captures, go_on);
+}
+
+std::vector<PlanPosition> positions_of(const Plan& plan, int channel) {
+    std::vector<PlanPosition> positions;
+    for (const std::size_t stage : stages_of_channel(plan.filter, channel))
+        if (stage < plan.filter_positions.size()) positions.push_back(plan.filter_positions[stage]);
+    return positions;
+}
+
+}  // namespace
+
+Outcome<Explanation> explain_run(const RecordedRun& record, const Plan& plan, const Judgement& judgement,
+                                 const Files& files, const std::function<bool(int channel)>& go_on,
+                                 const ExplainedLength& length) {
+    if (plan.filter_is_unknown) {
+        return Error{ErrorKind::input, plan.file, "its filter is unknown: there is nothing to explain the response by",
+                     "say kind and design of the filter in a plan, and capture with it"};
+    }
+    Gathering gathering(record, plan, files, length);
+    for (const Judgement::Match& match : judgement.matches) {
+        if (auto added = gathering.add(match); !added) return added.error();
+    }
+    Explanation explanation;
+    explanation.folder = record.folder;
+    explanation.plan_file = plan.file;
+    explanation.title = plan.title;
+    explanation.left_out = std::move(gathering.left_out());
+    const auto width = gathering.channels().size();
+    std::vector<std::vector<ChannelCapture>> captures(width);
+    std::vector<ChannelBoard> boards(width);
+    for (std::size_t c = 0; c < width; ++c) {
+        captures[c] = std::move(gathering.channels()[c].captures);
+        boards[c].declared.filter = chain_of_channel(plan.filter, static_cast<int>(c) + 1);
+        boards[c].captures = &captures[c];
+    }
+    for (std::size_t c = 0; c < width && !captures[c].empty(); ++c) {
+        ExplainedChannels explained;
+        const int channel = static_cast<int>(c) + 1;
+        explained.channels = {channel};
+        explained.samples = gathering.channels()[c].samples;
+        explained.stages = positions_of(plan, channel);
+        for (const ChannelCapture& capture : captures[c]) explained.cases.push_back(capture.case_name);
+        explained.finding = finding_of(plan.signal, boards, c, [&] { return go_on(channel); });
+        const auto same =
+            std::find_if(explanation.channels.begin(), explanation.channels.end(),
+                         [&](const ExplainedChannels& other) { return is_same(other.finding, explained.finding); });
+        if (same != explanation.channels.end())
+            same->channels.push_back(channel);
+        else
+            explanation.channels.push_back(std::move(explained));
+    }
+    return explanation;
+}
+
+Outcome<Explanation> explain_recorded(const std::string& folder, const Files& files,
+                                      const std::function<bool(int channel)>& go_on) {
+    const auto record = read_recorded_run(files, folder);
+    if (!record) return record.error();
+    std::vector<std::string> problems;
+    const auto plan = read_recorded_plan(*record, files, problems);
+    if (!plan) return plan.error();
+    if (!problems.empty()) return Error{ErrorKind::defect, folder, problems.front(), ""};
+    const auto selected = recorded_cases(*record, *plan);
+    if (!selected) return selected.error();
+    const auto judgement = match_captures(*record, *plan, false, *selected);
+    if (!judgement) return judgement.error();
+    return explain_run(*record, *plan, *judgement, files, go_on);
+}
+
+}  // namespace halflsb

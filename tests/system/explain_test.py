@@ -1,0 +1,195 @@
+"""explain: the faults of the virtual board are named, a board whose arithmetic nobody declared is described to the
+bit, and what is not known is not guessed."""
+import json
+import re
+import subprocess
+
+from support import NOISE, ROOT, VIRTUAL_BOARD, Case, halflsb, main
+
+RIGS = ROOT / "rigs"
+
+# What the answer must say of each fault of the virtual board; of a pair one for each filter.
+NAMED = {
+    "truncation": "floor in place of half-up",
+    "toward-zero": "toward-zero in place of half-up",
+    "half-away": "half-away in place of half-up",
+    "products-truncated": "each product shortened by floor before it is added",
+    "rounding-twice": "the constant of the rounding twice as large, or added twice",
+    "wrap": "an output that wraps",
+    "feedback-before-saturation": "feedback before the output's overflow",
+    "narrow-accumulator": "an accumulator of 16 bits",
+    "coefficients-truncated": "coefficients cut off toward zero",
+    "shift-off-by-one": r"a window of 16 points, divided by 32|a shift of 1[56] bits in place of 1[45] after the products",
+    "a1-sign": "a1 with the opposite sign",
+    "reversed-taps": "the taps in the opposite order of time",
+    "one-sample-late": "each output 1 sample late",
+    "window-15": "a window of 15 points, divided by 16",
+    "half-reset": "a reset clears only",
+    "no-reset": "a reset leaves the state as it was",
+    "state-lost": "each 256 samples from 256 on: the state is that of a reset",
+    "bypass": "the input goes past the filter",
+    "byte-swap": "at the input: the bytes of each word in the opposite order",
+    "polarity": "at the input: the opposite sign",
+    "half-buffer-repeated": r"a block in front of the filter is the one before it \(32 samples\)",
+    "sample-dropped": "each 1000 samples from 999 on: a sample does not reach the filter, the output is held",
+    "sample-duplicated": "each 1000 samples from 999 on: a sample reaches the filter twice",
+    "shared-state": "all channels pass one filter and share its state",
+    "crosstalk": "1/128 of the input of channel 1 is added to its output",
+    "channels-swapped": "its filter gets the samples of channel [12]",
+}
+# Outside of what is searched: no cause may be named.
+UNKNOWN = {"held-output", "added-noise", "drift"}
+# The codes are right.
+AS_DECLARED = {"slow-sample"}
+# Faults that this filter does not show to these stimuli: nothing fails, and nothing is to be explained.
+WITHOUT_EFFECT = {("settle", "half-away"), ("pair", "channels-swapped")}
+PLAN = """title = "nobody declared it"
+[signal]
+rate_hz = 1200.0
+input = "q15"
+output = "q15"
+filter = "load-cell"
+
+[[filter]]
+kind = "moving-average"
+points = 16
+"""
+FILTERS = ("load-cell", "settle", "quick-smoothing", "pair")
+
+
+def faults_of(name):
+    listed = subprocess.run([VIRTUAL_BOARD, "--list-faults"], capture_output=True, text=True, check=True).stdout
+    found = set()
+    for line in listed.splitlines():
+        fault = re.match(r"(?:[A-Z]\d\d, )?([a-z0-9-]+) ", line)
+        shown_by = re.search(r"\[(.*)\]$", line)
+        if fault and shown_by and (shown_by[1] == "any filter" or name in shown_by[1].split(", ")):
+            found.add(fault[1])
+    return found
+
+
+class Explain(Case):
+    def run_exact(self, name, *options, status=None):
+        plan = RIGS / "cw-7" / "exact" / f"{name}.toml"
+        with self.virtual_board("--filter-set", name, *options):
+            done = self.check(plan, self.rig(), "--root", RIGS)
+        if status is not None:
+            self.assert_status(done, status)
+        return done
+
+    def explain(self, *options, status=0):
+        done = halflsb("explain", self.folder / "run", *options, cwd=self.folder)
+        self.assert_status(done, status)
+        return done.out
+
+    def explained(self, status=0):
+        (explanation,) = json.loads(self.explain("--json", status=status))["explanations"]
+        return explanation["channels"]
+
+    def again(self):
+        subprocess.run(["rm", "-rf", self.folder / "run"], check=True)
+
+    def test_every_fault_of_the_virtual_board_is_named_or_unknown(self):
+        for name in FILTERS:
+            for fault in sorted(faults_of(name)):
+                with self.subTest(filter=name, fault=fault):
+                    self.again()
+                    self.look_at(name, fault)
+
+    def look_at(self, name, fault):
+        no_effect = fault in AS_DECLARED or (name, fault) in WITHOUT_EFFECT
+        done = self.run_exact(name, "--fault", fault, status=0 if no_effect else 1)
+        channels = self.explained(status=2 if fault in UNKNOWN else 0)
+        findings = {channel["finding"] for channel in channels}
+        if no_effect:
+            self.assertEqual(findings, {"as declared"})
+            return
+        if fault in UNKNOWN:
+            self.assertEqual(findings, {"unknown"})
+            self.assertIn("no change of filter, arithmetic, codes or stream that was tried", " ".join(done.out.split()))
+            return
+        self.assertLessEqual(findings, {"found", "as declared"})
+        named = [channel["causes"][0]["members"] for channel in channels if channel["finding"] == "found"]
+        self.assertTrue(named)
+        for members in named:
+            self.assertRegex(members[0]["what"], NAMED[fault])
+        # The check itself ended with it.
+        self.assertRegex(" ".join(done.out.split()), "explained, channels? .*" + NAMED[fault])
+
+    def test_what_nobody_declared_is_printed_to_be_pasted_and_holds_then(self):
+        path = self.write("plan.toml", PLAN)
+        with self.virtual_board("--filter-set", "load-cell"):
+            self.assert_status(self.check(path, self.rig()), 0)
+        text = self.explain()
+        self.assertIn("channel 1: its arithmetic is found", text)
+        block = text[text.index("[arithmetic]"):]
+        self.assertEqual(block, '[arithmetic]\nrounding = "half-up"\n')
+        self.again()
+        path.write_text(path.read_text().replace("[[filter]]", block + "\n[[filter]]"))
+        with self.virtual_board("--filter-set", "load-cell"):
+            self.assert_status(self.check(path, self.rig()), 0)
+        self.assertIn("channel 1: as declared", self.explain())
+        rules = {rule["kind"] for case in self.record()["verdict"]["cases"] for rule in case["rules"]}
+        self.assertIn("exact", rules)
+
+    def test_rules_that_fail_in_the_declared_arithmetic_are_told_so(self):
+        path = self.write("plan.toml", PLAN.replace("[[filter]]", '[arithmetic]\nrounding = "floor"\n\n[[filter]]') +
+                          '[[rule]]\nkind = "error"\nmax_lsb = 0.5\n' + NOISE)
+        for arithmetic, sentence in (
+                (True, "the declared arithmetic reproduces all 6000 samples of 1 case, bit for bit; rules that fail do so because of it"),
+                (False, 'the board computes with rounding = "floor", which reproduces all 6000 samples of 1 case, bit for bit; rules that fail do so in this arithmetic')):
+            self.again()
+            if not arithmetic:
+                path.write_text(path.read_text().replace('[arithmetic]\nrounding = "floor"\n', ""))
+            with self.virtual_board("--filter-set", "load-cell", "--fault", "truncation"):
+                done = self.check(path, self.rig())
+            self.assert_status(done, 1)
+            self.assertIn("explained, channel 1: " + sentence, " ".join(done.out.split()))
+
+    def test_channels_that_get_different_samples_show_what_is_mixed_up(self):
+        declared = '[arithmetic]\nrounding = "half-up"\naccumulator_bits = 32\n\n[[filter]]'
+        path = self.write("plan.toml", PLAN.replace('"load-cell"', '"pair"\nchannels = 2').replace("[[filter]]", declared))
+        for fault in ("channels-swapped", "crosstalk", "shared-state"):
+            with self.subTest(fault=fault):
+                self.again()
+                with self.virtual_board("--filter-set", "pair", "--fault", fault):
+                    self.assert_status(self.check(path, self.rig()), 1)
+                causes = [channel["causes"][0]["members"][0]["what"] for channel in self.explained() if channel["causes"]]
+                self.assertTrue(causes)
+                for cause in causes:
+                    self.assertRegex(cause, NAMED[fault])
+
+    def test_the_place_in_the_plan_and_the_sample_are_named(self):
+        self.run_exact("load-cell", "--fault", "truncation", status=1)
+        text = " ".join(self.explain().split())
+        self.assertRegex(text, r"where stage 1, \S*load-cell\.toml:\d+:\d+ ")
+        self.assertRegex(text, r"reproduces all [\d,]+ samples of \d+ cases, bit for bit; as the plan declares it the board would first differ at sample \d+ of case \"")
+        self.assertIn("next best", text)
+        (channel,) = self.explained()
+        (change,) = channel["causes"][0]["members"][0]["changes"]
+        self.assertEqual((change["slot"], change["stage"]), ("arithmetic", 1))
+
+    def test_some_cases_alone(self):
+        self.run_exact("load-cell", "--fault", "truncation", status=1)
+        names = self.record()["cases_planned"]
+        (channel,) = self.explained()
+        self.assertEqual(len(channel["cases"]), len(names))
+        done = halflsb("explain", self.folder / "run", "--case", names[0], "--json")
+        (explanation,) = json.loads(done.out)["explanations"]
+        self.assertEqual(explanation["channels"][0]["cases"], [names[0]])
+
+    def test_a_search_ends_in_time_with_what_it_has(self):
+        self.run_exact("quick-smoothing", "--fault", "added-noise", status=1)
+        text = self.explain("--for", "0.000001", status=2)
+        self.assertIn("the search was ended before its end", " ".join(text.split()))
+
+    def test_an_unknown_filter_has_nothing_to_be_compared_with(self):
+        plan = self.plan(NOISE, filter_text='[[filter]]\nkind = "unknown"\n', rules='[[rule]]\nkind = "unchanged"\n')
+        with self.virtual_board("--filter-set", "load-cell"):
+            self.assert_status(self.check(plan, self.rig()), 2)
+        done = halflsb("explain", self.folder / "run")
+        self.assert_status(done, 65)
+        self.assertIn("its filter is unknown", done.err)
+
+
+main()
