@@ -7,41 +7,34 @@
 #include "oracle/judge/crosstalk_judge.hpp"
 #include "oracle/judge/derived_limits.hpp"
 #include "oracle/judge/latency_evidence.hpp"
-#include "oracle/judge/sent_block.hpp"
 #include "oracle/judge/units.hpp"
 #include "oracle/measure/coupling.hpp"
 
 namespace halflsb {
 namespace {
 
-/// How many batches of the case have at least a quarter of the mean power, counted without the mean: the spread over
-/// them says how sure a coupling is.
+/// Of each batch so many are looked at: a plan of hours is read at once.
+constexpr std::int64_t most_looked_at = 4096;
+
+/// How many batches of the case begin with at least a quarter of the mean power, counted without the mean: the spread
+/// over them says how sure a coupling is.
 int loud_batches(const Plan& plan, const Case& the_case) {
     const std::int64_t length = the_case.stimulus->length_samples();
     std::array<double, coupling_batches> power{};
-    double sum = 0.0;
-    std::vector<Code> codes;
     std::vector<double> values;
-    const auto each_batch = [&](const auto& take) {
-        for (std::int64_t first = 0; first < length; first += static_cast<std::int64_t>(codes.size())) {
-            const std::int64_t batch = first * coupling_batches / length;
-            const std::int64_t end = ((batch + 1) * length + coupling_batches - 1) / coupling_batches;
-            codes.resize(static_cast<std::size_t>(
-                std::clamp<std::int64_t>(end - first, 1, static_cast<std::int64_t>(judge_block_samples))));
-            values.resize(codes.size());
-            fill_codes(*the_case.stimulus, plan.signal.input, plan.signal.quantise, first, codes);
-            values_of(plan.signal.input, codes, values);
-            take(static_cast<std::size_t>(batch));
-        }
-    };
-    each_batch([&](std::size_t) {
-        for (const double value : values) sum += value;
-    });
-    const double mean = sum / static_cast<double>(length);
-    double all = 0.0;
-    each_batch([&](std::size_t batch) {
-        for (const double value : values) power[batch] += (value - mean) * (value - mean);
-    });
+    for (std::int64_t batch = 0; batch < coupling_batches; ++batch) {
+        const std::int64_t first = batch * (length / coupling_batches);
+        std::vector<Code> codes(static_cast<std::size_t>(std::min(length / coupling_batches, most_looked_at)));
+        std::vector<double> more(codes.size());
+        fill_codes(*the_case.stimulus, plan.signal.input, plan.signal.quantise, first, codes);
+        values_of(plan.signal.input, codes, more);
+        values.insert(values.end(), more.begin(), more.end());
+    }
+    double sum = 0.0, all = 0.0;
+    for (const double value : values) sum += value;
+    const double mean = sum / static_cast<double>(values.size());
+    const std::size_t each_batch = values.size() / coupling_batches;
+    for (std::size_t i = 0; i < values.size(); ++i) power[i / each_batch] += (values[i] - mean) * (values[i] - mean);
     for (const double each : power) all += each;
     if (!(all > 0.0)) return 0;
     return static_cast<int>(std::count_if(power.begin(), power.end(), [&](double each) {

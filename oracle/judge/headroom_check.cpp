@@ -55,7 +55,7 @@ void check(const HeadroomRule&, const Rule& asked, const Plan& plan, const Case&
     refusals.push_back({asked.position,
                         "case \"" + the_case.name + "\" drives no node of the filter to its worst: shape = \"" +
                             the_case.shape + "\" " + most + ", and " + brief(100.0 * driven_least_ratio) +
-                            " % are needed in its first 65536 samples",
+                            " % are needed in its first " + std::to_string(reach_samples) + " samples",
                         "use shape = \"signs\" at level_ratio = 1.0, with the signs that halflsb predict gives for the "
                         "node"});
 }

@@ -12,7 +12,7 @@ namespace halflsb {
 namespace {
 
 constexpr std::size_t impulse_samples = 4096;
-constexpr std::int64_t most_looked_at = 65536;
+constexpr std::int64_t most_looked_at = reach_samples;
 
 std::vector<double> stimulus_values(const Plan& plan, const Case& the_case) {
     const auto count = static_cast<std::size_t>(std::min(the_case.stimulus->length_samples(), most_looked_at));

@@ -5,11 +5,12 @@
 #include <vector>
 
 #include "oracle/judge/case_judge.hpp"
-#include "oracle/judge/rule_kinds.hpp"
 #include "runner/config/plan_file.hpp"
 #include "runner/report/rule_report.hpp"
+#include "runner/report/terminal_report.hpp"
 #include "tests/diagnostics/plan_page.hpp"
-#include "tests/support/plans.hpp"
+#include "tests/diagnostics/right_board.hpp"
+#include "tests/runner/report/sample_run.hpp"
 
 namespace halflsb::diagnostics {
 
@@ -55,18 +56,9 @@ void show_refusals(Page& page) {
     parts.signal = "rate_hz = 1200.0\ninput = \"f32\"\noutput = \"f32\"\n";
     parts.rule = "kind = \"error\"\nmax_ratio = 0.1\n";
     show("headroom of floats", parts);
-    page.show("headroom of an input of floats", [] {
-        Plan plan = test::moving_average_plan();
-        plan.signal.input = *sample_format("f32");
-        ParameterValues length;
-        length.set("length_samples", std::int64_t{64});
-        const Case the_case = test::a_case(plan, "step", length, {Rule{HeadroomRule{}, {"plan.toml", 9, 1}}});
-        std::string text;
-        std::vector<Refusal> found;
-        check(the_case.rules.front(), plan, the_case, found);
-        for (const Refusal& refusal : found) text += refusal.problem + "\n  " + refusal.remedy + "\n";
-        return text;
-    }());
+    parts.signal = "rate_hz = 1200.0\ninput = \"f32\"\noutput = \"q15\"\noutput_per_input = 1.0\n";
+    parts.rule = "kind = \"error\"\nmax_lsb = 1\n";
+    show("headroom of an input of floats", parts);
 }
 
 /// Of the case's rules, those that did not pass; of the others the reason.
@@ -92,7 +84,7 @@ void show_deadlines(Page& page) {
         const Plan* plan = std::get_if<Plan>(&read);
         if (plan == nullptr) return page.missing(done);
         CaseJudge judge(*plan, plan->cases.front());
-        judge.add(test::right_response(*plan, plan->cases.front()));
+        judge.add(right_response(*plan));
         judge.add_ticks(counter, blocks);
         const auto judgement = judge.finish([](std::int64_t, std::span<Code>) -> Outcome<void> { return {}; });
         page.show(done, told(*plan, judgement->rules));
@@ -126,7 +118,7 @@ void show_judged(Page& page, std::string_view done, const Parts& parts, Spoil sp
         return page.missing(done);
     }
     const Case& the_case = plan->cases.front();
-    std::vector<Code> response = test::right_response(*plan, the_case);
+    std::vector<Code> response = right_response(*plan);
     spoil(response);
     CaseJudge judge(*plan, the_case);
     judge.add(response);
@@ -149,9 +141,6 @@ void show_crosstalk(Page& page) {
     };
     show_judged(page, "no crosstalk", parts, [](std::vector<Code>&) {});
     show_judged(page, "crosstalk of a 128th, a sample late", parts, with(1.0 / 128.0, 1));
-    show_judged(page, "an idle channel with a constant", parts, [](std::vector<Code>& r) {
-        for (std::size_t n = 1; n < r.size(); n += 2) r[n] = 7;
-    });
     parts.filter =
         "kind = \"moving-average\"\npoints = 4\nchannels = [1]\n[[filter]]\nkind = \"moving-average\"\n"
         "points = 8\nchannels = [2]\n";
@@ -161,6 +150,8 @@ void show_crosstalk(Page& page) {
         const std::vector<Code> from = r;
         for (std::size_t n = 4; 2 * n + 1 < r.size(); ++n) r[2 * n + 1] += (from[2 * n] + from[2 * (n - 4)]) / 32;
     });
+    parts.filter = "kind = \"fir\"\ntaps = [1.0]\n";
+    show_judged(page, "what comes through was not filtered", parts, with(1.0 / 16.0, 0));
     Parts floats = with_rule("kind = \"crosstalk\"\nmax_ratio = 0.1\n", noise + "channel = 1\n");
     floats.signal = "rate_hz = 1200.0\ninput = \"f32\"\noutput = \"f32\"\nchannels = 2\n";
     floats.rule = "kind = \"latency\"\nlatency_samples = 0\n";
@@ -172,8 +163,8 @@ void show_headroom(Page& page) {
     Parts parts = with_rule("kind = \"headroom\"\n", "shape = \"step\"\nlevel_ratio = 1.0\nlength_samples = 64\n");
     parts.filter = "kind = \"fir\"\ntaps = [0.75, 0.75]\n";
     parts.rule = "kind = \"error\"\nmax_lsb = 32768\n";
-    show_judged(page, "an output that saturates as it was said to", parts, [](std::vector<Code>&) {});
-    show_judged(page, "an output that wraps", parts, [](std::vector<Code>& r) {
+    show_judged(page, "the output saturates as it was said to", parts, [](std::vector<Code>&) {});
+    show_judged(page, "the output wraps", parts, [](std::vector<Code>& r) {
         for (std::size_t n = 1; n < r.size(); ++n) r[n] = 49150 - 65536;
     });
     show_judged(page, "a node that clips early", parts, [](std::vector<Code>& r) {
@@ -181,6 +172,14 @@ void show_headroom(Page& page) {
     });
     show_judged(page, "another fault in one sample", parts, [](std::vector<Code>& r) { r[20] -= 40; });
     show_judged(page, "another fault in two samples", parts, [](std::vector<Code>& r) { r[20] -= 40, r[22] -= 40; });
+}
+
+void show_times(Page& page) {
+    RunResult run = sample::run();
+    run.cases[0].stream.ticks_per_sample = Spread{23.4, 31.0, 2140.0};
+    run.cases[0].stream.round_trip_s = Spread{0.0042, 0.005, 0.0123};
+    run.cases[0].rules[0].rule.kind = DeadlineRule{};
+    page.show("the times of a case", case_text(run, 0, style));
 }
 
 }  // namespace
@@ -192,6 +191,7 @@ void device_chapter(Page& page) {
     show_deadlines(page);
     show_crosstalk(page);
     show_headroom(page);
+    show_times(page);
 }
 
 }  // namespace halflsb::diagnostics

@@ -15,6 +15,7 @@
 #include "runner/report/rule_report.hpp"
 #include "runner/report/terminal_report.hpp"
 #include "tests/diagnostics/plan_page.hpp"
+#include "tests/diagnostics/right_board.hpp"
 #include "tests/runner/report/sample_run.hpp"
 #include "tests/support/accepted.hpp"
 
@@ -42,29 +43,6 @@ Plan plan_of(Page& page, std::string_view done, const Parts& parts) {
         return {};
     }
     return std::get<Plan>(std::move(read));
-}
-
-/// What a right board returns.
-std::vector<Code> right_response(const Plan& plan) {
-    const Case& the_case = plan.cases.front();
-    const auto channels = static_cast<std::size_t>(plan.signal.channels);
-    const auto length = static_cast<std::size_t>(the_case.stimulus->length_samples());
-    std::vector<Code> codes(length * channels), all(length * channels);
-    fill_case_codes(plan, the_case, 0, codes);
-    for (std::size_t c = 0; c < channels; ++c) {
-        std::vector<Code> one(length);
-        std::vector<double> in(length), out(length);
-        for (std::size_t n = 0; n < length; ++n) one[n] = codes[n * channels + c];
-        values_of(plan.signal.input, one, in);
-        if (plan.filter_is_unknown) {
-            out = in;
-        } else {
-            make_declared_filter(*described_channel(plan, the_case, static_cast<int>(c) + 1), 1.0)->process(in, out);
-        }
-        for (std::size_t n = 0; n < length; ++n)
-            all[n * channels + c] = code_of(plan.signal.output, out[n], Rounding::half_up);
-    }
-    return all;
 }
 
 /// The blocks of the rules that did not pass, as the report has them; of those that passed their reason.

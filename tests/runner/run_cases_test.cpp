@@ -1,6 +1,7 @@
 // Cases on the model board: how they start, what is recorded of them, and how often they run.
 #include <filesystem>
 
+#include "oracle/judge/block_ticks.hpp"
 #include "runner/world/sha256.hpp"
 #include "tests/runner/run_bench.hpp"
 
@@ -335,4 +336,29 @@ TEST_CASE("stimulus: one that was not all sent is not kept", "[run]") {
     CHECK(bench.run.cases[0].stimulus.sha256.empty());
     CHECK(bench.run.cases[0].stimulus.file.empty());
     CHECK(files_in(bench.run_folder + "/stimuli") == 0);
+}
+
+TEST_CASE("run cases: the board's ticks are judged, kept and counted where a rule asks for them", "[run]") {
+    for (const double limit : {107.0, 106.0}) {
+        RunBench bench;
+        Case& the_case = bench.add_noise("belt", 0.5, 1000);
+        the_case.rules.push_back(test::rule(bench.plan(), "deadline", values({{"max_ticks", limit}})));
+        bench.add_noise("plain");
+        REQUIRE(bench.go());
+        const CaseResult& result = bench.run.cases.at(0);
+        CHECK(result.verdict == (limit == 107.0 ? CaseVerdict::pass : CaseVerdict::fail));
+        CHECK(result.ticks_file == "ticks/001-belt.npy");
+        const auto blocks = ticks_of_codes(bench.codes_of(result.ticks_file, format_of_ticks()));
+        REQUIRE(blocks.size() == 16);  // of 64 samples
+        CHECK(blocks[0] == BlockTicks{64, 6400, 107});
+        CHECK(blocks[15] == BlockTicks{40, 4000, 107});
+        REQUIRE(result.stream.ticks_per_sample);
+        CHECK(result.stream.ticks_per_sample->median == 100.0);
+        CHECK(result.stream.ticks_per_sample->largest == 100.0);
+        REQUIRE(result.stream.round_trip_s);
+        CHECK(result.stream.round_trip_s->median > 0.0);
+        CHECK(result.stream.round_trip_s->largest < result.stream.streaming_s);
+        CHECK(bench.run.cases.at(1).ticks_file.empty());
+        CHECK(bench.run.cases.at(1).stream.ticks_per_sample);
+    }
 }

@@ -300,17 +300,21 @@ private:
             table.keys.push_back({name, "1.0", find_parameter(*table.recipe, name), false});
     }
 
+    /// Not headroom: what of a stimulus can answer it hangs on every word of the filter, and finding out costs too much
+    /// for thousands of plans. The standard set has it, and headroom_judge_test its words.
+    const Recipe& drawn_rule() {
+        for (;;) {
+            const Recipe& kind = rule_recipes()[below(rule_recipes().size())];
+            if (kind.name != "headroom") return kind;
+        }
+    }
+
     /// A stimulus that can answer rules which ask for much.
     void suit(Table& stimulus, const Recipe& kind) const {
-        const auto become = [&](const char* shape, std::vector<std::pair<const char*, const char*>> words) {
-            stimulus = chosen("[case.stimulus]", "shape", *find_recipe(stimulus_recipes(), shape));
-            for (const auto& [name, value] : words)
-                stimulus.keys.push_back({name, value, find_parameter(*stimulus.recipe, name), true});
-        };
-        if (kind.name == "headroom") become("step", {{"level_ratio", "1.0"}, {"length_samples", "4096"}});
         if (kind.name != "crosstalk") return;
-        become("noise", {{"length_samples", "4096"}});
-        stimulus.keys.push_back({"channel", "1", find_parameter(case_stimulus_recipe(), "channel"), true});
+        stimulus = chosen("[case.stimulus]", "shape", *find_recipe(stimulus_recipes(), "noise"));
+        stimulus.keys.push_back({"length_samples", "4096", find_parameter(*stimulus.recipe, "length_samples"), true});
+        stimulus.keys.push_back({"channel", "1", find_parameter(case_stimulus_recipe(), "channel"), false});
     }
 
     /// The table with its required words and some of the others, thinned out until `taken` takes it. False when
@@ -423,7 +427,7 @@ private:
             Table stimulus = chosen("[case.stimulus]", "shape", shape);
             Table rule{"[[case.rule]]", nullptr, {{"kind", "\"unchanged\""}}};
             if (!settle(stimulus, [&](const Table& tried) { return goes({head, tried, rule}); })) continue;
-            const Recipe& kind = rule_recipes()[below(rule_recipes().size())];
+            const Recipe& kind = drawn_rule();
             rule = chosen("[[case.rule]]", "kind", kind);
             suit(stimulus, kind);
             if (!settle(rule, [&](const Table& tried) { return goes({head, stimulus, tried}); })) continue;
@@ -489,7 +493,7 @@ private:
     }
 
     void add_common_rule(RandomPlan& plan) {
-        const Recipe& kind = rule_recipes()[below(rule_recipes().size())];
+        const Recipe& kind = drawn_rule();
         Table rule = chosen("[[rule]]", "kind", kind);
         const auto first_case = [](std::vector<Table>& tables) {
             return std::find_if(tables.begin(), tables.end(), [](const Table& t) { return t.header == "[[case]]"; });

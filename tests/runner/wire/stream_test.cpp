@@ -56,6 +56,11 @@ TEST_CASE("stream: formats and channels of either side", "[wire]") {
     // The model's channel c of the output is channel c modulo 2 of the input.
     CHECK(first->samples == std::vector<Code>{1, -2, 1, 0x7FFFFFFF, INT32_MIN, 0x7FFFFFFF});
     CHECK(first->first_index == 0);
+    REQUIRE(first->blocks.size() == 1);
+    CHECK(first->blocks[0].samples == 2);
+    CHECK(first->blocks[0].ticks_total == 200);
+    CHECK(first->blocks[0].ticks_largest == 107);
+    CHECK(to_seconds(first->blocks[0].round_trip) >= 0.0);
     wire.send(std::vector<Code>{5, 6});
     const Outcome<Received> second = wire.advance(bench.clock.now() + seconds(1.0));
     REQUIRE(second);
