@@ -84,7 +84,7 @@ TEST_CASE("explain: channels that share a state", "[explain]") {
             for (Captures& each : captures) each[i].response.push_back(static_cast<Code>(board.step(each[i].sent[n])));
         }
     }
-    for (const std::size_t channel : {0, 1})
+    for (std::size_t channel = 0; channel < 2; ++channel)
         CHECK(cause_of(captures, channel) == "all channels pass one filter and share its state");
 }
 

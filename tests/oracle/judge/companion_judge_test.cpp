@@ -41,7 +41,9 @@ std::vector<Code> changed(std::vector<Code> codes, std::size_t at, Code by) {
     return codes;
 }
 
-Board right() { return right_response; }
+Board right() {
+    return [](const Plan& plan, const Case& the_case) { return right_response(plan, the_case); };
+}
 
 /// One code of the answer is another.
 Board off_at(std::size_t at, Code by) {
