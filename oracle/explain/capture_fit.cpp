@@ -62,6 +62,12 @@ CaptureSet::CaptureSet(const Signal& signal, std::vector<ChannelCapture> capture
     }
 }
 
+std::int64_t CaptureSet::samples() const {
+    std::int64_t all = 0;
+    for (const ChannelCapture& capture : captures_) all += std::ssize(capture.response);
+    return all;
+}
+
 CaptureFit CaptureSet::until_first_wrong(const BoardDescription& board) const {
     CaptureFit fit;
     const auto model = BoardModel::make(board, signal_);
@@ -106,12 +112,18 @@ void CaptureSet::order_by_variety() {
                      [&](std::size_t a, std::size_t b) { return different[a] > different[b]; });
 }
 
-double CaptureSet::miss_octaves(const BoardDescription& board) const {
+double CaptureSet::miss_octaves(const BoardDescription& board) const { return miss_of(board, captures_.size()); }
+
+double CaptureSet::first_miss_octaves(const BoardDescription& board) const { return miss_of(board, 1); }
+
+double CaptureSet::miss_of(const BoardDescription& board, std::size_t cases) const {
     const auto model = BoardModel::make(board, signal_);
     if (model == nullptr) return std::numeric_limits<double>::infinity();
     double octaves = 0.0;
     std::vector<Code> out;
-    for (const ChannelCapture& capture : captures_) {
+    for (std::size_t place = 0; place < std::min(cases, captures_.size()); ++place) {
+        // All of them in the order in which they were streamed: a reset may leave something.
+        const ChannelCapture& capture = captures_[cases < captures_.size() ? order_[place] : place];
         out.clear();
         model->begin_case(capture.start, capture.start_samples);
         model->process(std::span(capture.sent).first(std::min(capture.sent.size(), samples_of_miss)), out);

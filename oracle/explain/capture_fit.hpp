@@ -41,6 +41,8 @@ public:
 
     const Signal& signal() const { return signal_; }
     const std::vector<ChannelCapture>& captures() const { return captures_; }
+    /// Of all responses.
+    std::int64_t samples() const;
 
     /// Up to the first sample that differs.
     CaptureFit until_first_wrong(const BoardDescription& board) const;
@@ -51,10 +53,14 @@ public:
     /// How far a board is from the captures, at the start of each: the sum over the cases of log2 of the rms error in
     /// LSB, none below 2^-16. Infinite where there is no twin.
     double miss_octaves(const BoardDescription& board) const;
+    /// Of the case alone that is looked at first.
+    double first_miss_octaves(const BoardDescription& board) const;
     /// What miss_octaves gives where nothing differs.
     bool is_exact_start(double miss_octaves) const;
 
 private:
+    double miss_of(const BoardDescription& board, std::size_t cases) const;
+
     Signal signal_;
     std::vector<ChannelCapture> captures_;
     std::vector<std::size_t> order_;

@@ -14,6 +14,11 @@ namespace {
 constexpr std::size_t kept = 8, most_rounds = 10;
 /// What a bit of the price must be worth, in octaves of the error of all cases: words that mend by chance are not said.
 constexpr double octaves_a_bit = 0.25;
+/// What reproducing all samples is worth to those that reproduce the start of each case.
+constexpr double octaves_of_all = 256.0;
+
+/// Where no single word helps any more.
+constexpr std::size_t most_begun_of_two = 3, most_pairs = 20'000, most_pairs_kept = 64;
 
 /// Which choice of each word.
 using Choices = std::vector<std::size_t>;
@@ -33,8 +38,13 @@ public:
                 if (found_) break;
                 say_one(from);
             }
-            const std::vector<Choices> next = best();
-            if (next == begun) break;  // nothing came nearer
+            std::vector<Choices> next = best();
+            if (next == begun) {  // no word alone comes nearer
+                for (std::size_t i = 0; i < std::min(most_begun_of_two, begun.size()) && !found_; ++i)
+                    say_two(begun[i]);
+                next = best();
+                if (next == begun) break;
+            }
             begun = next;
         }
         if (found_) {
@@ -77,8 +87,16 @@ private:
         ++result_.tried;
         const double miss = captures_.miss_octaves(board_of(choices));
         misses_[choices] = miss;
-        if (std::isfinite(miss)) ranked_.insert({miss + octaves_a_bit * price_bits(choices), choices});
-        if (captures_.is_exact_start(miss) && candidate_of(choices).fit.is_exact()) found_ = choices;
+        if (!std::isfinite(miss)) return;
+        double rank = miss + octaves_a_bit * price_bits(choices);
+        if (captures_.is_exact_start(miss)) {
+            const Candidate candidate = candidate_of(choices);
+            if (candidate.fit.is_exact()) found_ = choices;
+            // What goes on longer is nearer, whatever it costs.
+            rank -= octaves_of_all * static_cast<double>(candidate.fit.equal) /
+                    static_cast<double>(std::max<std::int64_t>(1, captures_.samples()));
+        }
+        ranked_.insert({rank, choices});
     }
 
     void say_one(const Choices& from) {
@@ -89,6 +107,33 @@ private:
                 choices[word] = i;
                 look_at(choices);
             }
+        }
+    }
+
+    /// Two words together, from where no single one helps: all pairs by the first case, the nearest of them by all.
+    void say_two(const Choices& from) {
+        std::multimap<double, Choices> nearest;
+        for (std::size_t a = 0; a < words_.size(); ++a) {
+            for (std::size_t b = a + 1; b < words_.size(); ++b) {
+                if (words_[a].choices.size() * words_[b].choices.size() > most_pairs) continue;
+                Choices choices = from;
+                for (choices[a] = 0; choices[a] < words_[a].choices.size(); ++choices[a]) {
+                    if (!goes()) return;
+                    if (choices[a] == from[a]) continue;
+                    for (choices[b] = 0; choices[b] < words_[b].choices.size(); ++choices[b]) {
+                        if (choices[b] == from[b]) continue;
+                        ++result_.tried;
+                        const double miss = captures_.first_miss_octaves(board_of(choices));
+                        if (!std::isfinite(miss)) continue;
+                        nearest.insert({miss + octaves_a_bit * price_bits(choices), choices});
+                        if (nearest.size() > most_pairs_kept) nearest.erase(std::prev(nearest.end()));
+                    }
+                }
+            }
+        }
+        for (const auto& [rank, choices] : nearest) {
+            if (found_ || !goes()) return;
+            look_at(choices);
         }
     }
 

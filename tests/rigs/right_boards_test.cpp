@@ -202,10 +202,10 @@ private:
         if (!is_plain_ || !signal.input.has_lsb() || !signal.output.has_lsb()) return;
         std::string signs;
         const std::vector<double> h = impulse_response(chain_of_channel(board_.plan.filter, 1), 1024);
-        for (std::size_t n = h.size(); n-- > 0;) signs += h[n] < 0.0 ? '-' : h[n] > 0.0 ? '+' : '0';
-        const Case the_case = made("signs", values({{"signs", signs},
-                                                    {"level_ratio", chance(random_, 50) ? 1.0 : -1.0},
-                                                    {"length_samples", random_.whole(1100, 2000)}}));
+        const double way = chance(random_, 50) ? 1.0 : -1.0;  // a level is positive, so the signs are turned round
+        for (std::size_t n = h.size(); n-- > 0;) signs += way * h[n] < 0.0 ? '-' : way * h[n] > 0.0 ? '+' : '0';
+        const Case the_case = made(
+            "signs", values({{"signs", signs}, {"level_ratio", 1.0}, {"length_samples", random_.whole(1100, 2000)}}));
         judge(the_case, board_.respond(board_.plan, the_case), {HeadroomRule{}}, totals);
     }
 
