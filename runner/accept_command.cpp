@@ -72,22 +72,21 @@ std::string accepted_text(const AcceptedBaseline& accepted, const TextStyle& sty
 }  // namespace
 
 int accept_command(const Options& options, const Desk& desk) {
-    const auto record = read_recorded_run(desk.files, options.run);
-    if (!record) return tell(record.error(), options, desk);
-    if (auto whole = check_recorded_files(*record, desk.files); !whole) return tell(whole.error(), options, desk);
     std::vector<std::string> problems;
-    const auto plan = read_recorded_plan(*record, desk.files, problems);
+    const auto own = read_own_run(options.run, desk.files, problems);
     if (!problems.empty()) return tell_problems(problems, desk);
-    if (!plan) return tell(plan.error(), options, desk);
-    const auto selected = recorded_cases(*record, *plan);
+    if (!own) return tell(own.error(), options, desk);
+    const RecordedRun& record = own->record;
+    const Plan& plan = own->plan;
+    const auto selected = recorded_cases(record, plan);
     if (!selected) return tell(selected.error(), options, desk);
-    const auto judgement = match_captures(*record, *plan, false, *selected);
+    const auto judgement = match_captures(record, plan, false, *selected);
     if (!judgement) return tell(judgement.error(), options, desk);
-    const auto judged = judge_all(*record, *plan, *judgement, desk.files);
+    const auto judged = judge_all(record, plan, *judgement, desk.files);
     if (!judged) return tell(judged.error(), options, desk);
-    if (const auto refused = refusal_of_accept(*judged, *plan)) return tell(*refused, options, desk);
+    if (const auto refused = refusal_of_accept(*judged, plan)) return tell(*refused, options, desk);
 
-    AcceptWish wish{root_of(*record, options), "", desk.clock.utc(), tool_version,
+    AcceptWish wish{root_of(record, options), "", desk.clock.utc(), tool_version,
                     options.kept_samples.value_or(usual_kept_samples)};
     if (desk.files.resolved(wish.root).empty()) {
         return tell({ErrorKind::input, wish.root, "there is no such folder, and the baseline belongs below it",
@@ -100,16 +99,16 @@ int accept_command(const Options& options, const Desk& desk) {
         std::vector<Judgement::Match> matches;
     };
     std::vector<Target> targets;
-    for (auto& [baseline, matches] : cases_by_baseline(*plan, judgement->matches)) {
+    for (auto& [baseline, matches] : cases_by_baseline(plan, judgement->matches)) {
         auto before = read_before(wish.root + "/" + baseline, desk.files, problems);
         if (!before) return tell(before.error(), options, desk);
         targets.push_back({baseline, matches});
     }
     if (!problems.empty()) return tell_problems(problems, desk);
     if (targets.empty()) {
-        return tell({ErrorKind::input, record->folder, "none of its cases has an unchanged rule",
-                     "capture a case that has one"},
-                    options, desk);
+        return tell(
+            {ErrorKind::input, record.folder, "none of its cases has an unchanged rule", "capture a case that has one"},
+            options, desk);
     }
     const TextStyle style = style_of(desk.terminal, Stream::out, options.colour);
     for (const Target& target : targets) {
@@ -118,7 +117,7 @@ int accept_command(const Options& options, const Desk& desk) {
         const auto before = read_before(wish.root + "/" + target.baseline, desk.files, problems);
         if (!before) return tell(before.error(), options, desk);
         if (!problems.empty()) return tell_problems(problems, desk);
-        const auto accepted = accept_baseline(*record, *plan, target.matches, *before, wish, desk.files);
+        const auto accepted = accept_baseline(record, plan, target.matches, *before, wish, desk.files);
         if (!accepted) {
             Error error = accepted.error();
             // The advice of a run's folder, --out, is no option here.

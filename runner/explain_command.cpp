@@ -48,21 +48,20 @@ private:
 }  // namespace
 
 int explain_command(const Options& options, const Desk& desk) {
-    const auto record = read_recorded_run(desk.files, options.run);
-    if (!record) return tell(record.error(), options, desk);
-    if (auto whole = check_recorded_files(*record, desk.files); !whole) return tell(whole.error(), options, desk);
     std::vector<std::string> problems;
-    const auto plan = read_recorded_plan(*record, desk.files, problems);
+    const auto own = read_own_run(options.run, desk.files, problems);
     if (!problems.empty()) return tell_problems(problems, desk);
-    if (!plan) return tell(plan.error(), options, desk);
-    const auto selected = selected_cases(*record, *plan, options);
+    if (!own) return tell(own.error(), options, desk);
+    const RecordedRun& record = own->record;
+    const Plan& plan = own->plan;
+    const auto selected = selected_cases(record, plan, options);
     if (!selected) return tell(selected.error(), options, desk);
-    const auto judgement = match_captures(*record, *plan, false, *selected);
+    const auto judgement = match_captures(record, plan, false, *selected);
     if (!judgement) return tell(judgement.error(), options, desk);
 
     Outcome<Explanation> explanation = [&] {
-        Watch watch(desk, options, plan->signal.channels);
-        return explain_run(*record, *plan, *judgement, desk.files, [&](int channel) { return watch.go_on(channel); });
+        Watch watch(desk, options, plan.signal.channels);
+        return explain_run(record, plan, *judgement, desk.files, [&](int channel) { return watch.go_on(channel); });
     }();
     if (!explanation) return tell(explanation.error(), options, desk);
     if (desk.answer != nullptr) desk.answer->add_explanation(*explanation);

@@ -60,7 +60,7 @@ private:
         auto capture = CaptureFile::open(files_, *path, shown, plan_.signal.output, plan_.signal.channels);
         if (!capture) return capture.error();
         const CaseRates rates(plan_, the_case);
-        const std::int64_t sent = std::min(recorded.stimulus.samples, wanted(recorded));
+        const std::int64_t sent = std::min(recorded.stimulus.samples, length_.case_samples);
         const std::int64_t returned = std::min(rates.returned(sent), capture->samples());
         state_is_known_ = sent == recorded.stimulus.samples;
         const auto width = channels_.size();
@@ -81,15 +81,6 @@ private:
         return {};
     }
 
-    /// Beyond the first sample that a rule blamed there is something to see.
-    std::int64_t wanted(const CaseResult& recorded) const {
-        std::int64_t samples = length_.case_samples;
-        for (const RuleVerdict& rule : recorded.rules) {
-            if (rule.first_bad) samples = std::max(samples, rule.first_bad->index + length_.case_samples / 2);
-        }
-        return samples;
-    }
-
     std::vector<Code> of_channel(const std::vector<Code>& codes, std::size_t channel) const {
         std::vector<Code> one;
         for (std::size_t i = channel; i < codes.size(); i += channels_.size()) one.push_back(codes[i]);
@@ -105,30 +96,29 @@ private:
     bool state_is_known_ = true;
 };
 
+bool is_same(const EquivalenceClass& a, const EquivalenceClass& b) {
+    return std::equal(
+        a.members.begin(), a.members.end(), b.members.begin(), b.members.end(),
+        [](const Candidate& ours, const Candidate& theirs) { return ours.hypothesis == theirs.hypothesis; });
+}
+
+/// What is unknown of two channels is not known to be the same.
 bool is_same(const Finding& a, const Finding& b) {
-    if (a.kind != b.kind || a.is_inferred != b.is_inferred || a.search.classes.size() != b.search.classes.size())
-        return false;
-    if (!(a.search.declared.hypothesis.board == b.search.declared.hypothesis.board)) return false;
-    for (std::size_t i = 0; i < a.search.classes.size(); ++i) {
-        if (a.search.classes[i].members.front().hypothesis.what() !=
-            b.search.classes[i].members.front().hypothesis.what())
-            return false;
-        const auto& ours = a.search.classes[i].members;
-        const auto& others = b.search.classes[i].members;
-        if (ours.size() != others.size()) return false;
-        for (std::size_t k = 0; k < ours.size(); ++k)
-            if (!(ours[k].hypothesis.board == others[k].hypothesis.board)) return false;
-    }
-    return a.kind != FindingKind::unknown;
+    const auto &ours = a.search.classes, &theirs = b.search.classes;
+    return a.kind != FindingKind::unknown && a.kind == b.kind && a.is_inferred == b.is_inferred &&
+           a.search.declared.hypothesis == b.search.declared.hypothesis &&
+           std::equal(ours.begin(), ours.end(), theirs.begin(), theirs.end(),
+                      [](const EquivalenceClass& one, const EquivalenceClass& other) { return is_same(one, other); });
 }
 
 /// What one channel does to another is looked at before all that a channel may do alone.
 Finding finding_of(const Signal& signal, const std::vector<ChannelBoard>& boards, std::size_t channel,
                    const std::function<bool()>& go_on) {
     CaptureSet captures(signal, *boards[channel].captures);
-    const CaptureFit declared = captures.until_first_wrong(boards[channel].declared);
-    if (declared.could_run && !declared.is_exact()) {
-        if (auto cause = channel_cause(signal, boards, channel)) {
+    if (boards.size() > 1) {
+        const CaptureFit declared = captures.until_first_wrong(boards[channel].declared);
+        const bool is_wrong = declared.could_run && !declared.is_exact();
+        if (auto cause = is_wrong ? channel_cause(signal, boards, channel) : std::nullopt) {
             Finding finding;
             finding.kind = FindingKind::found;
             finding.search.declared = {{boards[channel].declared, {}, 0.0}, declared};

@@ -36,4 +36,13 @@ Outcome<Plan> read_recorded_plan(const RecordedRun& record, const Files& files, 
     return plan;
 }
 
+Outcome<OwnRun> read_own_run(const std::string& folder, const Files& files, std::vector<std::string>& problems) {
+    auto record = read_recorded_run(files, folder);
+    if (!record) return record.error();
+    if (auto whole = check_recorded_files(*record, files); !whole) return whole.error();
+    auto plan = read_recorded_plan(*record, files, problems);
+    if (!plan) return plan.error();
+    return OwnRun{std::move(*record), std::move(*plan)};
+}
+
 }  // namespace halflsb

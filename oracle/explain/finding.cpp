@@ -51,27 +51,25 @@ void take_as_said(SearchResult& search) {
 Finding infer(const BoardDescription& plan, CaptureSet& captures, const std::function<bool()>& go_on) {
     Inference inference = infer_arithmetic(plan, captures, go_on);
     Finding finding;
-    finding.is_inferred = true;
-    if (!inference.fitting.empty()) {
+    std::int64_t tried = inference.tried;
+    bool was_cut = inference.was_cut;
+    if (inference.fitting) {
         finding.kind = FindingKind::as_declared;
-        finding.search.declared = std::move(inference.fitting.front());
-    } else {
-        for (std::size_t i = 0; i < std::min(most_begun, inference.nearest.size()); ++i) {
-            Finding next = search_from(inference.nearest[i].hypothesis, captures, go_on);
-            next.is_inferred = true;
-            const bool is_better =
-                i == 0 || (finding.kind == FindingKind::unknown && next.kind != FindingKind::unknown);
-            next.search.tried += finding.search.tried;
-            if (is_better)
-                finding = std::move(next);
-            else
-                finding.search.tried = next.search.tried;
-            if (finding.kind != FindingKind::unknown || finding.search.was_cut) break;
-        }
+        finding.search.declared = std::move(*inference.fitting);
+    }
+    const std::size_t begun = inference.fitting ? 0 : std::min(most_begun, inference.nearest.size());
+    for (std::size_t i = 0; i < begun; ++i) {
+        Finding next = search_from(inference.nearest[i].hypothesis, captures, go_on);
+        tried += next.search.tried;
+        was_cut = was_cut || next.search.was_cut;
+        const bool is_explained = next.kind != FindingKind::unknown;
+        if (i == 0 || is_explained) finding = std::move(next);
+        if (is_explained || was_cut) break;
     }
     take_as_said(finding.search);
-    finding.search.tried += inference.tried;
-    finding.search.was_cut = finding.search.was_cut || inference.was_cut;
+    finding.is_inferred = true;
+    finding.search.tried = tried;
+    finding.search.was_cut = was_cut;
     return finding;
 }
 

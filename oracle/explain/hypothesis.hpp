@@ -42,6 +42,7 @@ struct Change {
     std::string what;       ///< what the board does: "floor in place of half-up"
     std::string look_at;    ///< where in the firmware
     double price_bits = 0.0;
+    bool operator==(const Change&) const = default;
 };
 
 struct Hypothesis {
@@ -51,6 +52,7 @@ struct Hypothesis {
     double price_bits() const;
     /// "floor in place of half-up; the output that wraps"
     std::string what() const;
+    bool operator==(const Hypothesis&) const = default;
 };
 
 /// Appends `made` with its change where its board is another than that of `from`. A change of a filter or an arithmetic

@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cmath>
 #include <map>
+#include <set>
 #include <utility>
 
 #include "oracle/explain/open_words.hpp"
@@ -83,10 +84,9 @@ private:
     }
 
     void look_at(const Choices& choices) {
-        if (misses_.count(choices) != 0) return;
+        if (!seen_.insert(choices).second) return;
         ++result_.tried;
         const double miss = captures_.miss_octaves(board_of(choices));
-        misses_[choices] = miss;
         if (!std::isfinite(miss)) return;
         double rank = miss + octaves_a_bit * price_bits(choices);
         if (captures_.is_exact_start(miss)) {
@@ -163,14 +163,14 @@ private:
                 }
             }
         }
-        result_.fitting.push_back(candidate_of(shortest));
+        result_.fitting = candidate_of(shortest);
     }
 
     const BoardDescription& plan_;
     CaptureSet& captures_;
     const std::function<bool()>& go_on_;
     std::vector<OpenWord> words_;
-    std::map<Choices, double> misses_;
+    std::set<Choices> seen_;
     std::multimap<double, Choices> ranked_;  ///< by miss and price
     std::optional<Choices> found_;
     Inference result_;

@@ -6,6 +6,7 @@
 
 #include <cstdint>
 #include <functional>
+#include <optional>
 #include <vector>
 
 #include "oracle/explain/capture_fit.hpp"
@@ -13,8 +14,8 @@
 namespace halflsb {
 
 struct Inference {
-    /// What reproduces all captures, without a change, cheapest first; two that say the same are one.
-    std::vector<Candidate> fitting;
+    /// What reproduces all captures, without a change and as short as it goes.
+    std::optional<Candidate> fitting;
     std::vector<Candidate> nearest;  ///< where nothing does: the nearest first, a few
     std::int64_t tried = 0;
     bool was_cut = false;  ///< go_on ended it

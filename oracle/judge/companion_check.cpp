@@ -13,11 +13,10 @@
 #include "oracle/judge/leftover.hpp"
 #include "oracle/judge/sent_block.hpp"
 #include "oracle/judge/units.hpp"
+#include "stimuli/samples_text.hpp"
 
 namespace halflsb {
 namespace {
-
-std::string samples_text(std::int64_t count) { return std::to_string(count) + (count == 1 ? " sample" : " samples"); }
 
 /// What a companion sends, before it is cut to the input's word.
 struct Sums {

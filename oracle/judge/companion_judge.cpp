@@ -7,12 +7,12 @@
 #include "oracle/judge/companion_limit.hpp"
 #include "oracle/judge/derived_limits.hpp"
 #include "oracle/judge/units.hpp"
+#include "stimuli/samples_text.hpp"
 
 namespace halflsb {
 namespace {
 
 std::string count_text(std::int64_t count) { return std::to_string(count); }
-std::string samples_text(std::int64_t count) { return count_text(count) + (count == 1 ? " sample" : " samples"); }
 
 /// Of repeat, blocks and shift: a limit of 0 asks for every bit.
 std::optional<Limit> written_limit(const Rule& rule) {

@@ -11,13 +11,11 @@
 #include "oracle/judge/latency_evidence.hpp"
 #include "oracle/judge/units.hpp"
 #include "oracle/measure/coupling.hpp"
+#include "oracle/measure/decibels.hpp"
 #include "oracle/measure/error.hpp"
 
 namespace halflsb {
 namespace {
-
-double decibels(double amplitude_ratio) { return 20.0 * std::log10(amplitude_ratio); }
-double from_decibels(double db) { return std::pow(10.0, db / 20.0); }
 
 std::optional<ErrorEnds> ends_of(const CrosstalkRule& rule, const JudgedChannel& channel) {
     if (!rule.largest) return std::nullopt;
@@ -108,14 +106,13 @@ JudgedFigure CrosstalkJudge::coupling_figure(const CouplingFigures& found) const
     const std::size_t chances = 2 * coupling_->measure.candidates();
     const Figure amplitude{std::fabs(found.amplitude.value), found.amplitude.standard_uncertainty};
     JudgedFigure figure =
-        decided("coupling", amplitude, coupling_->measure.degrees(), {.limit = from_decibels(limit_db)}, "dB",
+        decided("coupling", amplitude, coupling_->measure.degrees(), {.limit = amplitude_of_db(limit_db)}, "dB",
                 shares_of_rule(channel_.plan).alpha_over(chances));
     figure.limit = judged(limit_db);
     if (!figure.value) return figure;
-    figure.value = judged(decibels(amplitude.value));
+    figure.value = judged(db_of_amplitude(amplitude.value));
     figure.margin = judged(*figure.limit - *figure.value);
-    constexpr double db_a_neper = 8.685889638065037;  // 20 / ln 10
-    figure.uncertainty = judged(db_a_neper * amplitude.standard_uncertainty / amplitude.value);
+    figure.uncertainty = judged(db_per_neper * amplitude.standard_uncertainty / amplitude.value);
     return figure;
 }
 

@@ -3,36 +3,27 @@
 #include <algorithm>
 #include <charconv>
 #include <cmath>
-#include <numbers>
 
+#include "oracle/measure/decibels.hpp"
 #include "oracle/measure/repeated_looks.hpp"
 #include "oracle/measure/response_estimate.hpp"
 
 namespace halflsb {
-namespace {
-
-double ratio_of(double db) { return std::pow(10.0, db / 20.0); }
-double db_of(double ratio) { return 20.0 * std::log10(ratio); }
-/// d(20 lg x) = this dx / x.
-constexpr double db_per_neper = 20.0 / std::numbers::ln10;
-
-}  // namespace
-
 /// Of one point, what the rule limits.
 struct BandDecision::Gain {
     std::complex<double> design;
     ResponseEstimate difference;
     double scale;  ///< of the limits: the design's own gain, where they are relative to it
 
-    double value_db() const { return db_of(std::abs(design + difference.value) / scale); }
+    double value_db() const { return db_of_amplitude(std::abs(design + difference.value) / scale); }
     double uncertainty_db() const {
         return db_per_neper * std::sqrt(difference.variance) / std::abs(design + difference.value);
     }
     double surely_below_db(double probability) const {
-        return db_of(gain_surely_below(design, difference, probability) / scale);
+        return db_of_amplitude(gain_surely_below(design, difference, probability) / scale);
     }
     double surely_above_db(double probability) const {
-        return db_of(gain_surely_above(design, difference, probability) / scale);
+        return db_of_amplitude(gain_surely_above(design, difference, probability) / scale);
     }
 };
 
@@ -210,8 +201,8 @@ double BandDecision::samples_to_tell(const Side& side, std::size_t point, const 
     const double deviation = std::sqrt(gain.difference.variance);
     if (!std::isfinite(deviation) || !std::isfinite(side.limits_db[point])) return 0.0;
     // From the limit to the end of the zone, as a factor.
-    const double limit = ratio_of(side.limits_db[point]) * gain.scale;
-    const double delta = limit * std::fabs(ratio_of(side.at_least ? -zone_db_ : zone_db_) - 1.0);
+    const double limit = amplitude_of_db(side.limits_db[point]) * gain.scale;
+    const double delta = limit * std::fabs(amplitude_of_db(side.at_least ? -zone_db_ : zone_db_) - 1.0);
     return halflsb::fixed_length_samples(shares.alpha, shares.beta, delta, deviation, samples);
 }
 

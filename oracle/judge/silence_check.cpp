@@ -7,11 +7,10 @@
 #include "oracle/judge/latency_evidence.hpp"
 #include "oracle/judge/silence_judge.hpp"
 #include "oracle/judge/silence_span.hpp"
+#include "stimuli/samples_text.hpp"
 
 namespace halflsb {
 namespace {
-
-std::string samples_text(std::int64_t count) { return std::to_string(count) + (count == 1 ? " sample" : " samples"); }
 
 /// Of a channel. False: a refusal was added.
 bool falls_silent(const Rule& asked, const Plan& plan, const Case& the_case, int channel,

@@ -1,4 +1,5 @@
 #include "oracle/rules/companion_rules.hpp"
+#include "stimuli/samples_text.hpp"
 
 #include <algorithm>
 #include <string>
@@ -40,8 +41,6 @@ Outcome<std::vector<std::int64_t>> read_list(const ParameterValues& values, std:
     }
     return list;
 }
-
-std::string samples_text(std::int64_t count) { return std::to_string(count) + (count == 1 ? " sample" : " samples"); }
 
 Companion shifted(std::int64_t samples) {
     return {{}, {{1, samples}}, 0, "shift " + std::to_string(samples), samples_text(samples) + " later"};

@@ -30,6 +30,17 @@ inline Plan moving_average_plan(int points = 16) {
     return plan;
 }
 
+/// y = y + (x - y) / 8, rounded once, halves upward.
+inline Plan one_pole_plan() {
+    Plan plan = moving_average_plan();
+    plan.filter[0].design = BiquadCascade{{{0.125, 0.0, 0.0, -0.875, 0.0}}};
+    plan.filter[0].kind = "biquad-cascade";
+    plan.filter[0].coefficient_fraction_bits = 3;
+    plan.filter[0].arithmetic.coefficient_fraction_bits = 3;
+    plan.filter[0].arithmetic.rounding = Rounding::half_up;
+    return plan;
+}
+
 inline Rule rule(const Plan& plan, const std::string& kind, const ParameterValues& given) {
     const SampleFormat& output = plan.signal.output;
     const RuleContext context{plan.signal.rate_hz, output.has_lsb(),

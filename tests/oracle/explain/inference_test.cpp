@@ -64,14 +64,14 @@ void infer(const RandomChain& board, Random& random, Totals& totals) {
     plan.filter = undeclared(board.stages);
     const Inference found = infer_arithmetic(plan, captures, [] { return true; });
     ++totals.boards;
-    if (found.fitting.empty()) {
+    if (!found.fitting) {
         UNSCOPED_INFO("not inferred after " << found.tried << ": " << text_of(board) << "; nearest "
                                             << found.nearest.front().fit.equal << " "
                                             << words_of_chain(found.nearest.front().hypothesis.board.filter));
         return;
     }
     ++totals.inferred;
-    const FilterChain& chain = found.fitting.front().hypothesis.board.filter;
+    const FilterChain& chain = found.fitting->hypothesis.board.filter;
     const auto described = describe(chain, board.in, board.out, 1.0).described;
     REQUIRE(described);
     std::vector<Code> other(6000);

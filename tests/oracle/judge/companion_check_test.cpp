@@ -36,16 +36,6 @@ std::string refusal(const Plan& plan, const std::string& kind, const ParameterVa
     return refusal(plan, noise_case(plan, rule(plan, kind, given)));
 }
 
-Plan one_pole_plan() {
-    Plan plan = moving_average_plan();
-    plan.filter[0].design = BiquadCascade{{{0.125, 0.0, 0.0, -0.875, 0.0}}};
-    plan.filter[0].kind = "biquad-cascade";
-    plan.filter[0].coefficient_fraction_bits = 3;
-    plan.filter[0].arithmetic.coefficient_fraction_bits = 3;
-    plan.filter[0].arithmetic.rounding = Rounding::half_up;
-    return plan;
-}
-
 }  // namespace
 
 TEST_CASE("companion check: what can be sent again is", "[judge]") {

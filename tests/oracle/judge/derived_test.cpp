@@ -26,17 +26,6 @@ Rule derived_rule(const Plan& plan) { return test::rule(plan, "error", values({{
 
 std::vector<Refusal> refused(const Plan& plan) { return refusals(plan, noise_case(plan, derived_rule(plan))); }
 
-/// y = y + (x - y) / 8, rounded once, halves upward.
-Plan one_pole_plan() {
-    Plan plan = test::moving_average_plan();
-    plan.filter[0].design = BiquadCascade{{{0.125, 0.0, 0.0, -0.875, 0.0}}};
-    plan.filter[0].kind = "biquad-cascade";
-    plan.filter[0].coefficient_fraction_bits = 3;
-    plan.filter[0].arithmetic.coefficient_fraction_bits = 3;
-    plan.filter[0].arithmetic.rounding = Rounding::half_up;
-    return plan;
-}
-
 }  // namespace
 
 TEST_CASE("derived: a gain that is no power of two has no limit", "[judge]") {
@@ -59,7 +48,7 @@ TEST_CASE("derived: a gain that is no power of two has no limit", "[judge]") {
 }
 
 TEST_CASE("derived: a preloaded recursion has no limit, a preloaded sum of whole numbers has", "[judge]") {
-    Plan plan = one_pole_plan();
+    Plan plan = test::one_pole_plan();
     CHECK(refused(plan).empty());
     plan.filter[0].initial = Initial::first_sample;
     const auto found = refused(plan);
@@ -94,7 +83,7 @@ TEST_CASE("derived: a CIC of whole numbers has a limit, one in float32 has none"
 }
 
 TEST_CASE("derived: what a flush leaves of the case before is in the limits", "[judge]") {
-    const Plan plan = one_pole_plan();
+    const Plan plan = test::one_pole_plan();
     Case the_case = noise_case(plan, derived_rule(plan));
     const DerivedLimits from_reset = *derived_limits(plan, the_case, 1);
     // sum of h[k] = 7^k / 8^(k+1) over k > N is (7/8)^(N+1): below half an LSB of 2^-15 from N + 1 = 84 on.
@@ -127,7 +116,7 @@ TEST_CASE("derived: a filter that has forgotten all adds nothing to its limits",
 }
 
 TEST_CASE("derived: where samples are left out, the bias of the rest is held to the largest error alone", "[judge]") {
-    Plan plan = one_pole_plan();
+    Plan plan = test::one_pole_plan();
     // Gain 1 and an overshoot: the step to the top code reaches the rail, and what follows is judged by exact alone.
     plan.filter[0].design = BiquadCascade{{{0.03125, 0.0, 0.0, -1.875, 0.90625}}};
     plan.filter[0].coefficient_fraction_bits = plan.filter[0].arithmetic.coefficient_fraction_bits = 14;
@@ -209,7 +198,7 @@ TEST_CASE("derived: a board that floors where half-up was promised is beyond the
 }
 
 TEST_CASE("derived: a recursion that rounds the other way is seen by each end of error and bias", "[judge]") {
-    const Plan plan = one_pole_plan();
+    const Plan plan = test::one_pole_plan();
     const Rule bias = test::rule(plan, "error", values({{"bias_lsb", std::string("derived")}}));
     for (const Rule& rule : {derived_rule(plan), bias}) {
         for (const auto& [promised, board] :
@@ -255,7 +244,7 @@ TEST_CASE("derived: a response that is not a number is beyond every end", "[judg
 }
 
 TEST_CASE("derived: what is kept for one filter or case is not told for another", "[judge]") {
-    Plan plan = one_pole_plan();
+    Plan plan = test::one_pole_plan();
     const Case the_case = noise_case(plan, derived_rule(plan));
     const double half_up = derived_limits(plan, the_case, 1)->error.lowest;
     CHECK(derived_limits(plan, the_case, 1)->error.lowest == half_up);
