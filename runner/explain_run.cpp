@@ -1,6 +1,7 @@
 #include "runner/explain_run.hpp"
 
 #include <algorithm>
+#include <cmath>
 #include <utility>
 
 #include "oracle/explain/channel_search.hpp"
@@ -19,31 +20,41 @@ namespace {
 struct ChannelCaptures {
     std::vector<ChannelCapture> captures;
     std::int64_t samples = 0;
+    double peak_ratio = 0.0;
 };
+
+double peak_ratio_of(const SampleFormat& format, const std::vector<Code>& codes) {
+    double peak = 0.0;
+    for (const Code code : codes) peak = std::max(peak, std::abs(value_of(format, code)));
+    return std::min(1.0, peak / full_scale_value(format));
+}
 
 class Gathering {
 public:
-    Gathering(const RecordedRun& record, const Plan& plan, const Files& files, const ExplainedLength& length)
-        : record_(record),
-          plan_(plan),
-          files_(files),
-          length_(length),
-          channels_(static_cast<std::size_t>(plan.signal.channels)) {}
+    Gathering(int channels, const Files& files, const ExplainedLength& length)
+        : files_(files), length_(length), channels_(static_cast<std::size_t>(channels)) {}
 
-    Outcome<void> add(const Judgement::Match& match) {
-        const Case& the_case = plan_.cases[match.case_index];
-        if (const std::string why = why_not(the_case, *match.recorded); !why.empty()) {
-            left_out_.push_back(printable(the_case.name) + ": " + why);
-            state_is_known_ = false;
-            return {};
+    Outcome<void> add(const RunPart& part) {
+        for (const Judgement::Match& match : part.judgement.matches) {
+            if (auto added = add(part, match); !added) return added;
         }
-        return read(the_case, *match.recorded);
+        return {};
     }
 
     std::vector<ChannelCaptures>& channels() { return channels_; }
     std::vector<std::string>& left_out() { return left_out_; }
 
 private:
+    Outcome<void> add(const RunPart& part, const Judgement::Match& match) {
+        const Case& the_case = part.plan.cases[match.case_index];
+        if (const std::string why = why_not(the_case, *match.recorded); !why.empty()) {
+            left_out_.push_back(printable(the_case.name) + ": " + why);
+            state_is_known_ = false;
+            return {};
+        }
+        return read(part, the_case, *match.recorded);
+    }
+
     std::string why_not(const Case& the_case, const CaseResult& recorded) const {
         if (recorded.verdict == CaseVerdict::invalid) return "its capture is not whole";
         if (the_case.filter) return "at its rate the filter has another design";
@@ -53,20 +64,21 @@ private:
         return "";
     }
 
-    Outcome<void> read(const Case& the_case, const CaseResult& recorded) {
-        const std::string shown = record_.path_of(recorded.capture_file);
-        const auto path = path_inside(files_, record_.folder, recorded.capture_file);
+    Outcome<void> read(const RunPart& part, const Case& the_case, const CaseResult& recorded) {
+        const Signal& signal = part.plan.signal;
+        const std::string shown = part.record.path_of(recorded.capture_file);
+        const auto path = path_inside(files_, part.record.folder, recorded.capture_file);
         if (!path) return path.error();
-        auto capture = CaptureFile::open(files_, *path, shown, plan_.signal.output, plan_.signal.channels);
+        auto capture = CaptureFile::open(files_, *path, shown, signal.output, signal.channels);
         if (!capture) return capture.error();
-        const CaseRates rates(plan_, the_case);
+        const CaseRates rates(part.plan, the_case);
         const std::int64_t sent = std::min(recorded.stimulus.samples, length_.case_samples);
         const std::int64_t returned = std::min(rates.returned(sent), capture->samples());
         state_is_known_ = sent == recorded.stimulus.samples;
         const auto width = channels_.size();
         std::vector<Code> codes_in(static_cast<std::size_t>(sent) * width),
             codes_out(static_cast<std::size_t>(returned) * width);
-        fill_case_codes(plan_, the_case, 0, codes_in);
+        fill_case_codes(part.plan, the_case, 0, codes_in);
         if (auto got = capture->read(0, codes_out); !got) return got.error();
         for (std::size_t c = 0; c < width; ++c) {
             ChannelCapture one;
@@ -76,6 +88,7 @@ private:
             one.sent = of_channel(codes_in, c);
             one.response = of_channel(codes_out, c);
             channels_[c].samples += returned;
+            channels_[c].peak_ratio = std::max(channels_[c].peak_ratio, peak_ratio_of(signal.input, one.sent));
             channels_[c].captures.push_back(std::move(one));
         }
         return {};
@@ -87,10 +100,8 @@ private:
         return one;
     }
 
-    const RecordedRun& record_;
-    const Plan& plan_;
     const Files& files_;
-    const ExplainedLength& length_;
+    ExplainedLength length_;
     std::vector<ChannelCaptures> channels_;
     std::vector<std::string> left_out_;
     bool state_is_known_ = true;
@@ -138,16 +149,17 @@ std::vector<PlanPosition> positions_of(const Plan& plan, int channel) {
 
 }  // namespace
 
-Outcome<Explanation> explain_run(const RecordedRun& record, const Plan& plan, const Judgement& judgement,
-                                 const Files& files, const std::function<bool(int channel)>& go_on,
-                                 const ExplainedLength& length) {
+Outcome<Explanation> explain_runs(const std::vector<RunPart>& parts, const Files& files,
+                                  const std::function<bool(int channel)>& go_on, const ExplainedLength& length) {
+    const RecordedRun& record = parts.front().record;
+    const Plan& plan = parts.front().plan;
     if (plan.filter_is_unknown) {
         return Error{ErrorKind::input, plan.file, "its filter is unknown: there is nothing to explain the response by",
                      "say kind and design of the filter in a plan, and capture with it"};
     }
-    Gathering gathering(record, plan, files, length);
-    for (const Judgement::Match& match : judgement.matches) {
-        if (auto added = gathering.add(match); !added) return added.error();
+    Gathering gathering(plan.signal.channels, files, length);
+    for (const RunPart& part : parts) {
+        if (auto added = gathering.add(part); !added) return added.error();
     }
     Explanation explanation;
     explanation.folder = record.folder;
@@ -167,6 +179,7 @@ Outcome<Explanation> explain_run(const RecordedRun& record, const Plan& plan, co
         const int channel = static_cast<int>(c) + 1;
         explained.channels = {channel};
         explained.samples = gathering.channels()[c].samples;
+        explained.peak_ratio = gathering.channels()[c].peak_ratio;
         explained.stages = positions_of(plan, channel);
         for (const ChannelCapture& capture : captures[c]) explained.cases.push_back(capture.case_name);
         explained.finding = finding_of(plan.signal, boards, c, [&] { return go_on(channel); });
@@ -181,6 +194,16 @@ Outcome<Explanation> explain_run(const RecordedRun& record, const Plan& plan, co
     return explanation;
 }
 
+Outcome<std::vector<ChannelCapture>> channel_captures(const RunPart& part, const Files& files, int channel,
+                                                      std::size_t cases) {
+    Gathering gathering(part.plan.signal.channels, files, {});
+    if (auto added = gathering.add(part); !added) return added.error();
+    std::vector<ChannelCapture> captures =
+        std::move(gathering.channels()[static_cast<std::size_t>(channel) - 1].captures);
+    captures.resize(std::min(captures.size(), cases));
+    return captures;
+}
+
 Outcome<Explanation> explain_recorded(const std::string& folder, const Files& files,
                                       const std::function<bool(int channel)>& go_on) {
     const auto record = read_recorded_run(files, folder);
@@ -193,7 +216,7 @@ Outcome<Explanation> explain_recorded(const std::string& folder, const Files& fi
     if (!selected) return selected.error();
     const auto judgement = match_captures(*record, *plan, false, *selected);
     if (!judgement) return judgement.error();
-    return explain_run(*record, *plan, *judgement, files, go_on);
+    return explain_runs({{*record, *plan, *judgement}}, files, go_on);
 }
 
 }  // namespace halflsb

@@ -3,7 +3,9 @@
 
 #include <functional>
 #include <string>
+#include <vector>
 
+#include "oracle/explain/capture_fit.hpp"
 #include "runner/judge_run.hpp"
 #include "runner/world/explanation.hpp"
 
@@ -14,11 +16,22 @@ struct ExplainedLength {
     std::int64_t case_samples = 65'536, channel_samples = 1 << 21;
 };
 
-/// `go_on` is asked often, for the channel that is looked at; false ends the search with the best so far. Errors are
-/// those of files that cannot be read, and a plan whose filter is unknown.
-Outcome<Explanation> explain_run(const RecordedRun& record, const Plan& plan, const Judgement& judgement,
-                                 const Files& files, const std::function<bool(int channel)>& go_on,
-                                 const ExplainedLength& length = {});
+/// A run whose captures are looked at, all of its parts checked.
+struct RunPart {
+    const RecordedRun& record;
+    const Plan& plan;
+    const Judgement& judgement;
+};
+
+/// By filter and signal of the first part; the others were made on the same board, with the same filter. `go_on` is
+/// asked often, for the channel that is looked at; false ends the search with the best so far. Errors are those of
+/// files that cannot be read, and a plan whose filter is unknown.
+Outcome<Explanation> explain_runs(const std::vector<RunPart>& parts, const Files& files,
+                                  const std::function<bool(int channel)>& go_on, const ExplainedLength& length = {});
+
+/// What a channel (from 1) got and returned in the first `cases` cases of a run.
+Outcome<std::vector<ChannelCapture>> channel_captures(const RunPart& part, const Files& files, int channel,
+                                                      std::size_t cases);
 
 /// Of a run that was just recorded, by the plan in its folder.
 Outcome<Explanation> explain_recorded(const std::string& folder, const Files& files,

@@ -73,7 +73,7 @@ private:
         std::stable_sort(exact_.begin(), exact_.end(), [](const Candidate& a, const Candidate& b) {
             return a.hypothesis.price_bits() < b.hypothesis.price_bits();
         });
-        const std::vector<Probe> probes = probes_for(captures_.signal().input);
+        const std::vector<Probe> probes = probes_for(captures_.signal());
         for (Candidate& each : exact_) {
             std::string separated_by;
             bool is_placed = false;

@@ -134,8 +134,9 @@ const std::vector<CommandSpec>& command_table() {
          "halflsb judge .halflsb/20261201T093000Z-cw7"},
         {Command::explain, "explain", "RUN", "",
          "Searches for what the board does otherwise than its plan says, until every sample of a run is reproduced; of "
-         "a good run whose plan leaves it open, the arithmetic; needs no board and writes nothing",
-         "halflsb explain .halflsb/20261201T093000Z-cw7"},
+         "a good run whose plan leaves it open, the arithmetic; needs no board, but with --rig it asks one what tells the "
+         "causes apart, and records that beside the run",
+         "halflsb explain .halflsb/20261201T093000Z-cw7 --rig bench.toml"},
         {Command::accept, "accept", "RUN", "",
          "Keeps the responses of a good run as the baseline that its plan's unchanged rules compare with",
          "halflsb accept .halflsb/20261201T093000Z-cw7"},
@@ -157,8 +158,9 @@ const std::vector<OptionSpec>& option_table() {
          "",
          "RIG",
          "",
-         "How to reach the board: the lab's rig file; check takes several, one run after the other",
-         {check, predict},
+         "How to reach the board: the lab's rig file; check takes several, one run after the other; explain asks the "
+         "board there what the captures leave open",
+         {check, explain, predict},
          {check},
          "--list",
          {check},

@@ -285,4 +285,13 @@ std::variant<Plan, ReadProblems> read_plan(const std::string& path, const Files&
     return PlanFile(std::get<Document>(std::move(document)), path, files, options).read();
 }
 
+std::variant<Plan, ReadProblems> read_plan_text(const std::string& text, const std::string& path, const Files& files,
+                                                const PlanOptions& options) {
+    SourceText source(path, text);
+    auto tree = parse_document(source, "docs/plan.md");
+    if (auto* problem = std::get_if<std::string>(&tree)) return ReadProblems{{std::move(*problem)}};
+    Document document{std::move(source), std::get<TomlValue>(std::move(tree)), text};
+    return PlanFile(std::move(document), path, files, options).read();
+}
+
 }  // namespace halflsb

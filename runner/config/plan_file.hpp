@@ -30,5 +30,8 @@ struct PlanOptions {
 /// where the case cannot tell (judge/admission.hpp).
 std::variant<Plan, ReadProblems> read_plan(const std::string& path, const Files& files,
                                            const PlanOptions& options = {});
+/// The same of a text that lies in no file; `path` is what it is called.
+std::variant<Plan, ReadProblems> read_plan_text(const std::string& text, const std::string& path, const Files& files,
+                                                const PlanOptions& options);
 
 }  // namespace halflsb

@@ -89,14 +89,32 @@ Json channels_json(const ExplainedChannels& one) {
             {"missing", error_json(finding.missing)}};
 }
 
+Json asked_json(const AskedRun& run) {
+    Json questions = Json::array();
+    for (const AskedQuestion& question : run.questions) {
+        Json ruled_out = Json::array();
+        for (const AskedQuestion::RuledOut& cause : question.ruled_out)
+            ruled_out.push_back({{"channels", cause.channels}, {"what", text_json(cause.what)}});
+        questions.push_back({{"case", question.case_name},
+                             {"stimulus", question.what},
+                             {"ruled_out", std::move(ruled_out)},
+                             {"left", question.left}});
+    }
+    return {{"folder", run.folder}, {"questions", std::move(questions)}};
+}
+
 }  // namespace
 
 Json explanation_json(const Explanation& explanation) {
     Json channels = Json::array();
     for (const ExplainedChannels& one : explanation.channels) channels.push_back(channels_json(one));
+    Json asked = Json::array();
+    for (const AskedRun& run : explanation.asked) asked.push_back(asked_json(run));
     return {{"folder", explanation.folder},
             {"plan_file", explanation.plan_file},
             {"left_out", explanation.left_out},
+            {"asked", std::move(asked)},
+            {"not_asked", text_json(explanation.not_asked)},
             {"channels", std::move(channels)}};
 }
 

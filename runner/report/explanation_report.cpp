@@ -223,6 +223,29 @@ std::string channel_lines(const ExplainedChannels& one, const TextStyle& style) 
     return out;
 }
 
+std::string answer_text(const AskedQuestion& question) {
+    std::string text;
+    for (const AskedQuestion::RuledOut& cause : question.ruled_out)
+        text += (text.empty() ? "" : "; ") + channels_text(cause.channels) + ": " + cause.what;
+    return question.what + (text.empty() ? ": the answer rules out nothing" : ": the answer rules out " + text) + "; " +
+           counted(static_cast<std::int64_t>(question.left), "cause", "causes") + " left";
+}
+
+std::string asked_lines(const Explanation& explanation, const TextStyle& style) {
+    std::string out;
+    for (const AskedRun& run : explanation.asked) {
+        out += field(style, "asked", "the board, recorded in " + printable(run.folder));
+        for (std::size_t i = 0; i < run.questions.size(); ++i)
+            out += field(style, std::to_string(i + 1), answer_text(run.questions[i]));
+    }
+    const bool is_open = std::any_of(explanation.channels.begin(), explanation.channels.end(),
+                                     [](const auto& one) { return one.finding.kind == FindingKind::several; });
+    if (is_open && explanation.asked.empty() && explanation.not_asked.empty())
+        out += field(style, "next", "--rig RIG asks the board what these captures leave open");
+    if (!explanation.not_asked.empty()) out += field(style, "not asked", explanation.not_asked);
+    return out;
+}
+
 }  // namespace
 
 std::string arithmetic_lines(const FilterChain& chain) {
@@ -249,6 +272,7 @@ std::string explanation_text(const Explanation& explanation, const TextStyle& st
         printable(explanation.plan_file) + (explanation.title.empty() ? "" : ", " + printable(explanation.title)));
     for (std::size_t i = 0; i < explanation.left_out.size(); ++i)
         out += field(style, i == 0 ? "left out" : "", explanation.left_out[i]);
+    out += asked_lines(explanation, style);
     for (const ExplainedChannels& one : explanation.channels) out += channel_lines(one, style);
     return out;
 }
@@ -267,7 +291,7 @@ std::string explained_lines(const Explanation& explanation, const TextStyle& sty
                             " would return the same";
         } else if (finding.kind == FindingKind::several) {
             sentence = headline(one) + ": " + first_of(finding.search.classes.front()).what() + ", or " +
-                       first_of(finding.search.classes[1]).what();
+                       first_of(finding.search.classes[1]).what() + "; halflsb explain with --rig asks the board which";
         } else if (finding.kind == FindingKind::unknown) {
             sentence = "no change of filter, arithmetic, codes or stream that was tried reproduces the response";
         } else if (finding.kind == FindingKind::no_twin) {

@@ -183,6 +183,84 @@ class Explain(Case):
         text = self.explain("--for", "0.000001", status=2)
         self.assertIn("the search was ended before its end", " ".join(text.split()))
 
+    # A positive step does not tell floor from cutting toward zero; the level is below a third of the range.
+    STEP = PLAN.replace("[[filter]]", '[arithmetic]\nrounding = "half-up"\n\n[[filter]]') + """[[rule]]
+kind = "exact"
+[[case]]
+name = "step"
+[case.stimulus]
+shape = "step"
+at_samples = 20
+level_ratio = 0.30001
+length_samples = 2048
+"""
+
+    def test_the_board_is_asked_what_its_captures_leave_open(self):
+        path = self.write("plan.toml", self.STEP)
+        for fault, other in (("truncation", "toward-zero"), ("toward-zero", "floor")):
+            with self.subTest(fault=fault), self.virtual_board("--filter-set", "load-cell", "--fault", fault):
+                for folder in self.folder.glob("run*"):
+                    subprocess.run(["rm", "-rf", folder], check=True)
+                done = self.check(path, self.rig())
+                self.assert_status(done, 1)
+                self.assertIn("--rig asks the board which", " ".join(done.out.split()))
+                (alone,) = self.explained(status=2)
+                self.assertEqual(alone["finding"], "several")
+                (explanation,) = json.loads(self.explain("--rig", self.rig(), "--json"))["explanations"]
+                (channel,) = explanation["channels"]
+                self.assertEqual(channel["finding"], "found")
+                self.assertEqual(channel["causes"][0]["members"][0]["what"], NAMED[fault])
+                self.assertEqual(channel["cases"], ["step", "question 1, loud noise"])
+                (asked,) = explanation["asked"]
+                self.assertEqual(asked["folder"], str(self.folder / "run-asked"))
+                (question,) = asked["questions"]
+                self.assertEqual(question["ruled_out"], [{"channels": [1], "what": f"{other} in place of half-up"}])
+                self.assertEqual(question["left"], 1)
+                # A second time the folder of the first stays.
+                text = " ".join(self.explain("--rig", self.rig()).split())
+                self.assertIn(f"recorded in {self.folder}/run-asked-2", text)
+                self.assertIn(f"loud noise: the answer rules out channel 1: {other} in place of half-up; 1 cause left", text)
+
+    def test_no_question_goes_beyond_the_level_of_the_run(self):
+        path = self.write("plan.toml", self.STEP)
+        with self.virtual_board("--filter-set", "load-cell", "--fault", "truncation"):
+            self.assert_status(self.check(path, self.rig()), 1)
+            self.explain("--rig", self.rig())
+        asked = self.folder / "run-asked"
+        record = json.loads((asked / "run.json").read_text())
+        self.assertEqual([case["name"] for case in record["verdict"]["cases"]], ["question 1, loud noise"])
+        level = float(re.search(r"level_ratio = (\S+)", (asked / "plan.toml").read_text())[1])
+        self.assertEqual(level, round(0.30001 * 32768) / 32768)
+        # The folder is a run as any other is.
+        self.assert_status(halflsb("judge", asked), 1)
+
+    def test_another_firmware_is_not_asked_in_its_place(self):
+        path = self.write("plan.toml", self.STEP)
+        with self.virtual_board("--filter-set", "load-cell", "--fault", "truncation", "--build-id", "aa01"):
+            self.assert_status(self.check(path, self.rig()), 1)
+        with self.virtual_board("--filter-set", "load-cell", "--fault", "toward-zero", "--build-id", "bb02"):
+            done = halflsb("explain", self.folder / "run", "--rig", self.rig())
+        self.assert_status(done, 3)
+        self.assertIn("2 causes fit", done.out)
+        self.assertIn("the board runs build-id bb02", done.err)
+
+    def test_a_board_that_is_not_there_leaves_what_the_captures_say(self):
+        path = self.write("plan.toml", self.STEP)
+        with self.virtual_board("--filter-set", "load-cell", "--fault", "truncation", "--build-id", ""):
+            self.assert_status(self.check(path, self.rig()), 1)
+            done = halflsb("explain", self.folder / "run", "--rig", self.rig())
+            self.assert_status(done, 0)
+            self.assertIn("the firmware of the run has no build-id", " ".join(done.err.split()))
+        done = halflsb("explain", self.folder / "run", "--rig", self.rig())
+        self.assert_status(done, 3)
+        self.assertIn("2 causes fit", done.out)
+
+    def test_nothing_is_asked_where_the_captures_decide(self):
+        self.run_exact("load-cell", "--fault", "truncation", status=1)
+        done = halflsb("explain", self.folder / "run", "--rig", self.rig())
+        self.assert_status(done, 0)
+        self.assertFalse((self.folder / "run-asked").exists())
+
     def test_an_unknown_filter_has_nothing_to_be_compared_with(self):
         plan = self.plan(NOISE, filter_text='[[filter]]\nkind = "unknown"\n', rules='[[rule]]\nkind = "unchanged"\n')
         with self.virtual_board("--filter-set", "load-cell"):

@@ -33,7 +33,7 @@ using Captures = std::vector<ChannelCapture>;
 /// Channel 2 gets the cases of channel 1 backward, so that they differ.
 std::array<Captures, 2> sent_captures() {
     std::array<Captures, 2> captures;
-    for (const Probe& probe : probes_for(two_channels().input)) {
+    for (const Probe& probe : probes_for(two_channels())) {
         ChannelCapture one;
         one.case_name = probe.what;
         one.sent = probe.codes;

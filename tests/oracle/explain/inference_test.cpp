@@ -52,7 +52,7 @@ void infer(const RandomChain& board, Random& random, Totals& totals) {
     signal.input = board.in;
     signal.output = board.out;
     std::vector<ChannelCapture> all;
-    for (const Probe& probe : probes_for(board.in)) {
+    for (const Probe& probe : probes_for(signal)) {
         ChannelCapture capture;
         capture.case_name = probe.what;
         capture.sent = probe.codes;
@@ -101,8 +101,8 @@ TEST_CASE("explain: the arithmetic that nobody declared is inferred to the bit",
     constexpr std::uint64_t seed = 20261203;
     CAPTURE(seed);
     const Totals totals = infer_all(seed, test::rounds_of(12));
-    // 95 of 100 is asked of many; of a few one may be missed.
-    CHECK(totals.same >= totals.boards - 1);
+    // 95 of 100 is asked of many: of 12 more than two are missed once in 50 draws.
+    CHECK(totals.same >= totals.boards - 2);
     CHECK(totals.same > 0);
 }
 

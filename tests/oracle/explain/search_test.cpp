@@ -57,7 +57,7 @@ std::vector<ChannelCapture> captures_of(const Bench& bench, Wrong wrong) {
     const auto board = bench.board(wrong);
     board->reset();
     std::vector<ChannelCapture> captures;
-    for (const Probe& probe : probes_for(q15_signal().input)) {
+    for (const Probe& probe : probes_for(q15_signal())) {
         ChannelCapture capture;
         capture.case_name = probe.what;
         capture.sent = probe.codes;
