@@ -24,16 +24,10 @@ std::vector<BoardDescription> boards_of(const ExplainedChannels& one) {
     return boards;
 }
 
-/// A run of questions, read back as any other.
-struct AnsweredRun {
-    OwnRun own;
-    Judgement judgement;
-};
-
 class Asking {
 public:
     Asking(const AskRequest& request, Files& files, const Clock& clock, RunObserver& observer)
-        : request_(request), files_(files), clock_(clock), observer_(observer), signal_(request.run.plan.signal) {}
+        : request_(request), files_(files), clock_(clock), observer_(observer), signal_(request.run.own.plan.signal) {}
 
     Outcome<AskResult> run() {
         auto first = explain();
@@ -60,9 +54,8 @@ private:
     }
 
     Outcome<Explanation> explain() {
-        std::vector<RunPart> parts{{request_.run.record, request_.run.plan, request_.judgement}};
-        for (const AnsweredRun& answered : answered_)
-            parts.push_back({answered.own.record, answered.own.plan, answered.judgement});
+        std::vector<RunPart> parts{request_.run.part()};
+        for (const OpenedCaptures& answered : answered_) parts.push_back(answered.part());
         return explain_runs(parts, files_, request_.go_on);
     }
 
@@ -108,7 +101,7 @@ private:
 
     /// Beside the run, under a name that is free.
     std::string free_folder() const {
-        std::string folder = request_.run.record.folder;
+        std::string folder = request_.run.own.record.folder;
         while (folder.size() > 1 && folder.back() == '/') folder.pop_back();
         folder += "-asked";
         std::string free = folder;
@@ -117,7 +110,7 @@ private:
     }
 
     Outcome<Plan> read(const std::string& text, const std::string& path) const {
-        const RecordedRun& record = request_.run.record;
+        const RecordedRun& record = request_.run.own.record;
         PlanOptions options;
         options.root = files_.exists(record.plan_root()) ? record.plan_root() : record.folder;
         auto plan = read_plan_text(text, path, files_, options);
@@ -127,7 +120,7 @@ private:
     }
 
     Outcome<std::string> text_of(const std::vector<Probe>& questions, bool first_flushes) const {
-        const RecordedRun& record = request_.run.record;
+        const RecordedRun& record = request_.run.own.record;
         std::vector<QuestionCase> cases;
         for (std::size_t i = 0; i < questions.size(); ++i) {
             cases.push_back({name_of_question(i, questions[i]), "tells apart what the captures of the run leave open",
@@ -144,7 +137,7 @@ private:
 
     bool has_twin() const {
         const auto described =
-            describe(request_.run.plan.filter, signal_.input, signal_.output, signal_.output_per_input).described;
+            describe(request_.run.own.plan.filter, signal_.input, signal_.output, signal_.output_per_input).described;
         return described && !described->missing;
     }
 
@@ -178,7 +171,7 @@ private:
     void set_firmware(RunRequest& run) const {
         run.rig = request_.rig;
         run.rig_text = request_.rig_text;
-        const RecordedRun& record = request_.run.record;
+        const RecordedRun& record = request_.run.own.record;
         if (record.run.board.build_id.empty()) {
             run.warnings.push_back(
                 "the firmware of the run has no build-id: nobody checks that the board still has it");
@@ -190,24 +183,16 @@ private:
     }
 
     Outcome<void> read_back(const std::string& folder) {
-        std::vector<std::string> problems;
-        auto own = read_own_run(folder, files_, problems);
-        if (!own) return own.error();
-        if (!problems.empty()) return Error{ErrorKind::defect, folder, problems.front(), ""};
-        answered_.push_back({std::move(*own), {}});
-        AnsweredRun& answered = answered_.back();
-        const auto selected = recorded_cases(answered.own.record, answered.own.plan);
-        if (!selected) return selected.error();
-        auto judgement = match_captures(answered.own.record, answered.own.plan, false, *selected);
-        if (!judgement) return judgement.error();
-        answered.judgement = std::move(*judgement);
+        auto opened = open_fresh_captures(folder, files_);
+        if (!opened) return opened.error();
+        answered_.push_back(std::move(*opened));
         return {};
     }
 
     /// Which of the causes before the round say that something else should have come back.
     AskedQuestion answer_to(const std::vector<Probe>& questions, std::size_t place, const Explanation& before) const {
         AskedQuestion question{name_of_question(place, questions[place]), questions[place].what, {}, 0};
-        const AnsweredRun& answered = answered_.back();
+        const OpenedCaptures& answered = answered_.back();
         for (const ExplainedChannels& one : before.channels) {
             if (!is_in_doubt(one)) continue;
             const auto fits = causes_that_fit(answered, one, place);
@@ -225,11 +210,10 @@ private:
     }
 
     /// To all answers up to that of `place`.
-    std::vector<bool> causes_that_fit(const AnsweredRun& answered, const ExplainedChannels& one,
+    std::vector<bool> causes_that_fit(const OpenedCaptures& answered, const ExplainedChannels& one,
                                       std::size_t place) const {
         std::vector<bool> fits;
-        const auto captures = channel_captures({answered.own.record, answered.own.plan, answered.judgement}, files_,
-                                               one.channels.front(), place + 1);
+        const auto captures = channel_captures(answered.part(), files_, one.channels.front(), place + 1);
         for (const BoardDescription& board : boards_of(one))
             fits.push_back(captures && CaptureSet(signal_, *captures).until_first_wrong(board).is_exact());
         return fits;
@@ -240,7 +224,7 @@ private:
     const Clock& clock_;
     RunObserver& observer_;
     const Signal& signal_;
-    std::deque<AnsweredRun> answered_;
+    std::deque<OpenedCaptures> answered_;
 };
 
 }  // namespace

@@ -6,8 +6,7 @@
 #include <string>
 
 #include "runner/config/rig.hpp"
-#include "runner/explain_run.hpp"
-#include "runner/open_run.hpp"
+#include "runner/open_captures.hpp"
 #include "runner/run_observer.hpp"
 #include "runner/world/clock.hpp"
 #include "runner/world/files.hpp"
@@ -19,8 +18,7 @@ inline constexpr int most_rounds_of_questions = 3;
 
 struct AskRequest {
     std::string tool_version;
-    const OwnRun& run;
-    const Judgement& judgement;  ///< of the run
+    const OpenedCaptures& run;
     Rig rig;
     std::string rig_text;
     std::function<bool(int channel)> go_on;  ///< of the searches

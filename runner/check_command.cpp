@@ -8,7 +8,7 @@
 #include "runner/commands.hpp"
 #include "runner/config/firmware_image.hpp"
 #include "runner/config/repository.hpp"
-#include "runner/explain_run.hpp"
+#include "runner/open_captures.hpp"
 #include "runner/record/run_folder.hpp"
 #include "runner/record/run_json.hpp"
 #include "runner/report/explanation_report.hpp"
@@ -160,7 +160,9 @@ constexpr double longest_explaining_s = 10.0;
 void explain_failed(const RunResult& run, const Desk& desk, Reporter& reporter) {
     if (run.counts().fail == 0 || run.ended_by || interrupted()) return;
     const Instant started = desk.clock.now();
-    const auto explanation = explain_recorded(run.folder, desk.files, [&](int) {
+    const auto captures = open_fresh_captures(run.folder, desk.files);
+    if (!captures) return;
+    const auto explanation = explain_runs({captures->part()}, desk.files, [&](int) {
         return !interrupted() && to_seconds(desk.clock.now() - started) < longest_explaining_s;
     });
     if (explanation) reporter.explained(*explanation);

@@ -31,6 +31,7 @@ int check_command(const Options& options, const Desk& desk);
 int list_command(const Options& options, const Desk& desk);  ///< check --list
 int judge_command(const Options& options, const Desk& desk);
 int explain_command(const Options& options, const Desk& desk);
+int compare_command(const Options& options, const Desk& desk);
 int accept_command(const Options& options, const Desk& desk);
 int predict_command(const Options& options, const Desk& desk);
 int ports_command(const Options& options, const Desk& desk);

@@ -3,74 +3,16 @@
 #include <variant>
 
 #include "runner/ask_board.hpp"
-#include "runner/choose_cases.hpp"
 #include "runner/cli/exit_status.hpp"
-#include "runner/cli/progress.hpp"
 #include "runner/commands.hpp"
 #include "runner/config/rig_file.hpp"
-#include "runner/explain_run.hpp"
-#include "runner/open_run.hpp"
+#include "runner/open_captures.hpp"
 #include "runner/report/explanation_report.hpp"
+#include "runner/search_watch.hpp"
 #include "runner/world/interrupt.hpp"
 
 namespace halflsb {
 namespace {
-
-Outcome<std::vector<std::size_t>> selected_cases(const RecordedRun& record, const Plan& plan, const Options& options) {
-    if (options.case_patterns.empty() && options.labels.empty()) return recorded_cases(record, plan);
-    auto chosen = choose_cases(plan, options, {});
-    if (!chosen) return chosen.error();
-    return std::move(chosen->selected);
-}
-
-/// Ends the search at an interruption or when the time is over, and shows what goes on.
-class Watch final : public RunObserver {
-public:
-    Watch(const Desk& desk, const Options& options, int channels)
-        : desk_(desk),
-          error_style_(style_of(desk.terminal, Stream::err, options.colour)),
-          started_(desk.clock.now()),
-          time_limit_s_(options.time_limit_s),
-          channels_(channels),
-          live_(desk.terminal, desk.clock, !options.verbose && desk.answer == nullptr) {}
-
-    bool go_on(int channel) {
-        live_.update({static_cast<std::size_t>(channel), static_cast<std::size_t>(channels_),
-                      "searching what channel " + std::to_string(channel) + " does", 0, 0,
-                      to_seconds(desk_.clock.now() - started_)});
-        return has_time();
-    }
-    bool has_time() const {
-        return !interrupted() && !(time_limit_s_ && to_seconds(desk_.clock.now() - started_) > *time_limit_s_);
-    }
-
-    void warning(const std::string& text) override { err("warning: " + text); }
-    void starting(const RunResult&) override {}
-    void greeted(const RunResult& run, std::optional<double>) override { questions_ = run.cases_planned; }
-    void progress(std::size_t place, std::int64_t samples_done, std::int64_t samples_total) override {
-        live_.update({place, questions_.size(), questions_[place - 1], samples_done, samples_total,
-                      to_seconds(desk_.clock.now() - started_)});
-    }
-    void retrying(const RunResult& run, int attempt, const Error& reason) override {
-        err(questions_[run.cases.size()] + ": attempt " + std::to_string(attempt) +
-            " gave no whole capture, it runs again: " + reason.problem);
-    }
-    void finished(const RunResult&) override {}
-
-private:
-    void err(const std::string& text) {
-        live_.erase();
-        if (desk_.answer == nullptr) (void)desk_.terminal.write(Stream::err, wrapped(error_style_, text, 0));
-    }
-
-    const Desk& desk_;
-    TextStyle error_style_;
-    Instant started_;
-    std::optional<double> time_limit_s_;
-    int channels_;
-    LiveLine live_;
-    std::vector<std::string> questions_;
-};
 
 struct RigFile {
     Rig rig;
@@ -78,15 +20,14 @@ struct RigFile {
 };
 
 /// With a rig the board is asked; without one the captures are all there is.
-Outcome<AskResult> explain(const OwnRun& own, const Judgement& judgement, const std::optional<RigFile>& rig,
-                           const Desk& desk, Watch& watch) {
+Outcome<AskResult> explain(const OpenedCaptures& run, const std::optional<RigFile>& rig, const Desk& desk,
+                           SearchWatch& watch) {
     const auto go_on = [&](int channel) { return watch.go_on(channel); };
     if (rig) {
-        const AskRequest request{
-            tool_version, own, judgement, rig->rig, rig->text, go_on, [&] { return watch.has_time(); }};
+        const AskRequest request{tool_version, run, rig->rig, rig->text, go_on, [&] { return watch.has_time(); }};
         return ask_board(request, desk.files, desk.clock, watch);
     }
-    auto explanation = explain_runs({{own.record, own.plan, judgement}}, desk.files, go_on);
+    auto explanation = explain_runs({run.part()}, desk.files, go_on);
     if (!explanation) return explanation.error();
     return AskResult{std::move(*explanation), std::nullopt};
 }
@@ -95,11 +36,9 @@ Outcome<AskResult> explain(const OwnRun& own, const Judgement& judgement, const 
 
 int explain_command(const Options& options, const Desk& desk) {
     std::vector<std::string> problems;
-    const auto own = read_own_run(options.run, desk.files, problems);
+    const auto run = open_captures(options.run, options, desk.files, problems);
     if (!problems.empty()) return tell_problems(problems, desk);
-    if (!own) return tell(own.error(), options, desk);
-    const RecordedRun& record = own->record;
-    const Plan& plan = own->plan;
+    if (!run) return tell(run.error(), options, desk);
     std::optional<RigFile> rig;
     if (!options.rigs.empty()) {
         auto read = read_rig(options.rigs.front(), desk.files);
@@ -108,14 +47,9 @@ int explain_command(const Options& options, const Desk& desk) {
         if (!text) return tell(text.error(), options, desk);
         rig = RigFile{std::get<Rig>(std::move(read)), std::move(*text)};
     }
-    const auto selected = selected_cases(record, plan, options);
-    if (!selected) return tell(selected.error(), options, desk);
-    const auto judgement = match_captures(record, plan, false, *selected);
-    if (!judgement) return tell(judgement.error(), options, desk);
-
     Outcome<AskResult> asked = [&] {
-        Watch watch(desk, options, plan.signal.channels);
-        return explain(*own, *judgement, rig, desk, watch);
+        SearchWatch watch(desk, options, run->own.plan.signal.channels);
+        return explain(*run, rig, desk, watch);
     }();
     if (!asked) return tell(asked.error(), options, desk);
     const Explanation& explanation = asked->explanation;

@@ -7,7 +7,6 @@
 #include "oracle/explain/channel_search.hpp"
 #include "oracle/filters/channel_stages.hpp"
 #include "oracle/judge/case_rates.hpp"
-#include "runner/open_run.hpp"
 #include "runner/record/capture_file.hpp"
 #include "runner/report/people.hpp"
 #include "runner/world/interrupt.hpp"
@@ -150,7 +149,8 @@ std::vector<PlanPosition> positions_of(const Plan& plan, int channel) {
 }  // namespace
 
 Outcome<Explanation> explain_runs(const std::vector<RunPart>& parts, const Files& files,
-                                  const std::function<bool(int channel)>& go_on, const ExplainedLength& length) {
+                                  const std::function<bool(int channel)>& go_on, const ExplainedLength& length,
+                                  const StartBoards* begin_with) {
     const RecordedRun& record = parts.front().record;
     const Plan& plan = parts.front().plan;
     if (plan.filter_is_unknown) {
@@ -172,10 +172,13 @@ Outcome<Explanation> explain_runs(const std::vector<RunPart>& parts, const Files
     for (std::size_t c = 0; c < width; ++c) {
         captures[c] = std::move(gathering.channels()[c].captures);
         boards[c].declared.filter = chain_of_channel(plan.filter, static_cast<int>(c) + 1);
+        if (begin_with != nullptr && (*begin_with)[c]) boards[c].declared = *(*begin_with)[c];
         boards[c].captures = &captures[c];
     }
     for (std::size_t c = 0; c < width && !captures[c].empty(); ++c) {
+        if (begin_with != nullptr && !(*begin_with)[c]) continue;
         ExplainedChannels explained;
+        explained.is_since_a_run = begin_with != nullptr;
         const int channel = static_cast<int>(c) + 1;
         explained.channels = {channel};
         explained.samples = gathering.channels()[c].samples;
@@ -202,21 +205,6 @@ Outcome<std::vector<ChannelCapture>> channel_captures(const RunPart& part, const
         std::move(gathering.channels()[static_cast<std::size_t>(channel) - 1].captures);
     captures.resize(std::min(captures.size(), cases));
     return captures;
-}
-
-Outcome<Explanation> explain_recorded(const std::string& folder, const Files& files,
-                                      const std::function<bool(int channel)>& go_on) {
-    const auto record = read_recorded_run(files, folder);
-    if (!record) return record.error();
-    std::vector<std::string> problems;
-    const auto plan = read_recorded_plan(*record, files, problems);
-    if (!plan) return plan.error();
-    if (!problems.empty()) return Error{ErrorKind::defect, folder, problems.front(), ""};
-    const auto selected = recorded_cases(*record, *plan);
-    if (!selected) return selected.error();
-    const auto judgement = match_captures(*record, *plan, false, *selected);
-    if (!judgement) return judgement.error();
-    return explain_runs({{*record, *plan, *judgement}}, files, go_on);
 }
 
 }  // namespace halflsb

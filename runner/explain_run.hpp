@@ -2,6 +2,7 @@
 #pragma once
 
 #include <functional>
+#include <optional>
 #include <string>
 #include <vector>
 
@@ -23,18 +24,18 @@ struct RunPart {
     const Judgement& judgement;
 };
 
+/// For each channel the board that the search begins with in place of the declared one; none: it is not looked at.
+using StartBoards = std::vector<std::optional<BoardDescription>>;
+
 /// By filter and signal of the first part; the others were made on the same board, with the same filter. `go_on` is
 /// asked often, for the channel that is looked at; false ends the search with the best so far. Errors are those of
 /// files that cannot be read, and a plan whose filter is unknown.
 Outcome<Explanation> explain_runs(const std::vector<RunPart>& parts, const Files& files,
-                                  const std::function<bool(int channel)>& go_on, const ExplainedLength& length = {});
+                                  const std::function<bool(int channel)>& go_on, const ExplainedLength& length = {},
+                                  const StartBoards* begin_with = nullptr);
 
 /// What a channel (from 1) got and returned in the first `cases` cases of a run.
 Outcome<std::vector<ChannelCapture>> channel_captures(const RunPart& part, const Files& files, int channel,
                                                       std::size_t cases);
-
-/// Of a run that was just recorded, by the plan in its folder.
-Outcome<Explanation> explain_recorded(const std::string& folder, const Files& files,
-                                      const std::function<bool(int channel)>& go_on);
 
 }  // namespace halflsb

@@ -28,6 +28,8 @@ int run(const Options& options, const Desk& desk) {
             return judge_command(options, desk);
         case Command::explain:
             return explain_command(options, desk);
+        case Command::compare:
+            return compare_command(options, desk);
         case Command::accept:
             return accept_command(options, desk);
         case Command::predict:

@@ -22,12 +22,13 @@ const std::vector<ExitStatus>& exit_statuses() {
     static const std::vector<ExitStatus> table = {
         {passed,
          "every rule of every selected case passed",
-         {"all cases ran and passed", "explain: what the board does is found, to the bit"},
+         {"all cases ran and passed", "explain: what the board does is found, to the bit",
+          "compare: all responses are the same"},
          "nothing to do"},
         {rule_failed,
          "a rule failed on a valid capture",
          {"the response differs from the reference by more than a limit", "the latency is not the expected one",
-          "the gain leaves its band", "a response is not the accepted one"},
+          "the gain leaves its band", "a response is not the accepted one", "compare: a response is not what it was"},
          "the report shows the figure, the first bad sample and the command that repeats the case"},
         {undecided,
          "a rule could not be decided, none failed",
@@ -52,7 +53,7 @@ const std::vector<ExitStatus>& exit_statuses() {
          {"a plan or rig that is missing, too large or no TOML", "an unknown key, a wrong type, a value out of range",
           "isolated is not true in the rig", "a file outside the root", "an --image without a build-id",
           "a run folder that is incomplete, edited, of another version or not one of ours",
-          "accept: a run that is no baseline"},
+          "accept: a run that is no baseline", "compare: runs that have no case in common"},
          "the message names file, line and column and what to write instead"},
         {defect,
          "a defect of halflsb itself",
@@ -79,6 +80,8 @@ int exit_status_of(const Explanation& explanation) {
     const auto& channels = explanation.channels;
     return !channels.empty() && std::all_of(channels.begin(), channels.end(), is_told) ? passed : undecided;
 }
+
+int exit_status_of(const Comparison& comparison) { return comparison.differs() ? rule_failed : passed; }
 
 int exit_status_of(const Error& error) {
     switch (error.kind) {

@@ -6,6 +6,7 @@
 #include <string_view>
 #include <vector>
 
+#include "runner/world/comparison.hpp"
 #include "runner/world/explanation.hpp"
 #include "runner/world/result.hpp"
 
@@ -32,6 +33,9 @@ int exit_status_of_judgement(const RunResult& run);
 
 /// Of an explanation: 2 where the captures do not decide what explains some channel.
 int exit_status_of(const Explanation& explanation);
+
+/// Of two runs side by side: 1 where a response differs.
+int exit_status_of(const Comparison& comparison);
 
 /// Of several runs in one call, from that of each: 130, 73, 70, 65 and 64 before 1, then 3, 2, 0.
 int exit_status_of_all(const std::vector<int>& statuses);

@@ -53,6 +53,7 @@ std::string typed(const OptionSpec& option) {
 std::string form_of(const CommandSpec& command) {
     std::string form = "halflsb " + std::string(command.name);
     if (!command.operand.empty()) form += " " + std::string(command.operand);
+    if (!command.second.empty()) form += " " + std::string(command.second);
     if (!command.optional.empty()) form += " [" + std::string(command.optional) + "]";
     for (const OptionSpec& option : option_table()) {
         if (holds(option.needed_by, command.command)) form += " " + typed(option);

@@ -1,4 +1,4 @@
-// Every command and option with its words.
+// Every option with its words.
 #include <algorithm>
 #include <charconv>
 
@@ -123,35 +123,8 @@ std::string take_verbose(Options& options, const std::string&) {
 
 }  // namespace
 
-const std::vector<CommandSpec>& command_table() {
-    static const std::vector<CommandSpec> table = {
-        {Command::check, "check", "PLAN", "",
-         "Streams the plan's stimuli to the board, captures what its filter returns and judges it; the main job",
-         "halflsb check cw7.toml --rig bench.toml"},
-        {Command::judge, "judge", "RUN", "PLAN",
-         "Judges the captures of a run again, by the plan it was made with or by another; needs no board and, but "
-         "for --html, writes nothing",
-         "halflsb judge .halflsb/20261201T093000Z-cw7"},
-        {Command::explain, "explain", "RUN", "",
-         "Searches for what the board does otherwise than its plan says, until every sample of a run is reproduced; of "
-         "a good run whose plan leaves it open, the arithmetic; needs no board, but with --rig it asks one what tells the "
-         "causes apart, and records that beside the run",
-         "halflsb explain .halflsb/20261201T093000Z-cw7 --rig bench.toml"},
-        {Command::accept, "accept", "RUN", "",
-         "Keeps the responses of a good run as the baseline that its plan's unchanged rules compare with",
-         "halflsb accept .halflsb/20261201T093000Z-cw7"},
-        {Command::predict, "predict", "PLAN", "",
-         "Reads the files and tells on paper what to expect: response, error bounds, headroom, what the rules would "
-         "see, "
-         "the time on the wire; needs no board",
-         "halflsb predict cw7.toml --rig bench.toml"},
-        {Command::ports, "ports", "", "", "Lists the serial ports with their stable names", "halflsb ports"},
-    };
-    return table;
-}
-
 const std::vector<OptionSpec>& option_table() {
-    constexpr Command check = Command::check, judge = Command::judge, explain = Command::explain,
+    constexpr Command check = Command::check, judge = Command::judge, explain = Command::explain, compare = Command::compare,
                       accept = Command::accept, predict = Command::predict, ports = Command::ports;
     static const std::vector<OptionSpec> table = {
         {"--rig",
@@ -171,20 +144,20 @@ const std::vector<OptionSpec>& option_table() {
          "every case",
          "Only this case; the exact name, or a pattern in which * stands for any characters and ? for one; may be "
          "repeated",
-         {check, judge, explain, predict},
+         {check, judge, explain, compare, predict},
          {},
          "",
-         {check, judge, explain, predict},
+         {check, judge, explain, compare, predict},
          take_case},
         {"--label",
          "",
          "NAME",
          "whatever their labels",
          "Only cases with this label; repeated: with any of them; beside --case a case must match both",
-         {check, judge, explain, predict},
+         {check, judge, explain, compare, predict},
          {},
          "",
-         {check, judge, explain, predict},
+         {check, judge, explain, compare, predict},
          take_label},
         {"--all",
          "",
@@ -201,8 +174,8 @@ const std::vector<OptionSpec>& option_table() {
          "TIME",
          "as long as it takes",
          "Only as many cases, from the first on, as this time on the wire is enough for: 60s, 5min, 2h; says what is "
-         "not covered then; explain: ends the search after this time with the best so far",
-         {check, explain},
+         "not covered then; explain and compare: end the search after this time with the best so far",
+         {check, explain, compare},
          {},
          "",
          {},
@@ -293,7 +266,7 @@ const std::vector<OptionSpec>& option_table() {
          "",
          "",
          "Makes standard output one JSON document and nothing else, also when the command fails",
-         {check, judge, explain, accept, predict, ports},
+         {check, judge, explain, compare, accept, predict, ports},
          {},
          "",
          {},
@@ -303,7 +276,7 @@ const std::vector<OptionSpec>& option_table() {
          "",
          "",
          "Says on standard error what is being done",
-         {check, judge, explain, accept, predict, ports},
+         {check, judge, explain, compare, accept, predict, ports},
          {},
          "",
          {},
@@ -313,7 +286,7 @@ const std::vector<OptionSpec>& option_table() {
          "FILE",
          "none",
          "Keeps all diagnostics in this file, replacing it",
-         {check, judge, explain, accept, predict, ports},
+         {check, judge, explain, compare, accept, predict, ports},
          {},
          "",
          {},
@@ -323,7 +296,7 @@ const std::vector<OptionSpec>& option_table() {
          "WHEN",
          "auto",
          "auto, always or never; auto is colour on a terminal unless NO_COLOR is set or TERM is dumb",
-         {check, judge, explain, accept, predict, ports},
+         {check, judge, explain, compare, accept, predict, ports},
          {},
          "",
          {},

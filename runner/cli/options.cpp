@@ -79,6 +79,8 @@ Error unexpected(const std::string& argument, const CommandSpec* command) {
 
 Error one_too_many(const std::string& argument, const CommandSpec* command) {
     std::string takes = command->operand.empty() ? " takes none" : " takes one " + std::string(command->operand);
+    if (!command->second.empty())
+        takes = " takes a " + std::string(command->operand) + " and a second " + std::string(command->second);
     if (!command->optional.empty()) takes += " and at most one " + std::string(command->optional);
     return usage_error("'" + printable(argument) + "' is one operand too many", std::string(command->name) + takes);
 }
@@ -166,16 +168,21 @@ struct CommandParser {
         });
         if (option != operands.end()) return unexpected(*option, spec);
         operands.insert(operands.end(), behind.begin(), behind.end());
-        const std::size_t most = (spec->operand.empty() ? 0u : 1u) + (spec->optional.empty() ? 0u : 1u);
+        const std::string_view second = spec->second.empty() ? spec->optional : spec->second;
+        const std::size_t most = (spec->operand.empty() ? 0u : 1u) + (second.empty() ? 0u : 1u);
         if (operands.size() > most) return one_too_many(operands[most], spec);
         if (!spec->operand.empty() && (operands.empty() || operands.front().empty())) {
             return usage_error(std::string(spec->name) + " needs a " + std::string(spec->operand),
                                "for example: " + std::string(spec->example));
         }
+        if (!spec->second.empty() && operands.size() < 2) {
+            return usage_error(std::string(spec->name) + " needs a second " + std::string(spec->second),
+                               "for example: " + std::string(spec->example));
+        }
         for (std::size_t i = 0; i < operands.size(); ++i) {
-            const std::string_view name = i == 0 ? spec->operand : spec->optional;
+            const std::string_view name = i == 0 ? spec->operand : second;
             if (operands[i].empty()) return usage_error("the " + std::string(name) + " is an empty path");
-            (name == "RUN" ? options.run : options.plan) = operands[i];
+            (name != "RUN" ? options.plan : i == 0 ? options.run : options.run_after) = operands[i];
         }
         return {};
     }

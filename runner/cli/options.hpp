@@ -14,13 +14,14 @@
 
 namespace halflsb {
 
-enum class Command { check, judge, explain, accept, predict, ports };
+enum class Command { check, judge, explain, compare, accept, predict, ports };
 
 struct CommandSpec {
     Command command;
     std::string_view name;
     std::string_view operand;   ///< "PLAN", or "" for none
     std::string_view optional;  ///< a second one that may be left out, or ""
+    std::string_view second;    ///< a second one that may not, or ""
     std::string_view help;
     std::string_view example;
 };
@@ -29,7 +30,8 @@ struct CommandSpec {
 struct Options {
     Command command = Command::check;
     std::string plan;               ///< "" when none was given
-    std::string run;                ///< folder of a run, of judge, explain and accept
+    std::string run;                ///< folder of a run, of judge, explain, compare and accept
+    std::string run_after;          ///< of compare: the run of the newer firmware
     std::vector<std::string> rigs;  ///< several only for check
     std::vector<std::string> case_patterns;
     std::vector<std::string> labels;

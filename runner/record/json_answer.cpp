@@ -1,5 +1,6 @@
 #include "runner/record/json_answer.hpp"
 
+#include "runner/record/comparison_json.hpp"
 #include "runner/record/explanation_json.hpp"
 #include "runner/record/json_parts.hpp"
 #include "runner/record/json_text.hpp"
@@ -102,6 +103,10 @@ void JsonAnswer::add_explanation(const Explanation& explanation) {
     explanations_.push_back(json_value_text(explanation_json(explanation), 2));
 }
 
+void JsonAnswer::set_comparison(const Comparison& comparison) {
+    comparison_ = json_value_text(comparison_json(comparison), 1);
+}
+
 std::string JsonAnswer::text(int exit_status) const {
     const Json head = {{"format", command_.empty() ? "halflsb" : "halflsb " + command_},
                        {"format_version", json_answer_version},
@@ -116,6 +121,7 @@ std::string JsonAnswer::text(int exit_status) const {
         whole += ",\n  \"" + std::string(key) + "\": " + value;
     };
     if (command_ == "check") add("list", list_);
+    if (command_ == "compare") add("comparison", comparison_);
     if (command_ == "predict") add("prediction", prediction_);
     if (command_ == "ports") add("ports", ports_);
     if (command_ == "accept") {

@@ -8,6 +8,7 @@
 #include <utility>
 #include <vector>
 
+#include "runner/world/comparison.hpp"
 #include "runner/world/explanation.hpp"
 #include "runner/world/prediction.hpp"
 #include "runner/world/result.hpp"
@@ -73,6 +74,7 @@ public:
     void set_ports(const std::vector<ListedPort>& ports);
     void set_prediction(const Prediction& prediction);
     void add_explanation(const Explanation& explanation);
+    void set_comparison(const Comparison& comparison);
 
     std::string text(int exit_status) const;
 
@@ -80,7 +82,7 @@ private:
     std::string command_, tool_version_;
     std::optional<Error> error_;
     std::vector<std::string> problems_, runs_, baselines_, explanations_;
-    std::string list_ = "null", prediction_ = "null", ports_ = "[]";  ///< rendered
+    std::string list_ = "null", prediction_ = "null", comparison_ = "null", ports_ = "[]";  ///< rendered
 };
 
 }  // namespace halflsb

@@ -42,9 +42,7 @@ std::string effect_text(RailEffect effect) {
 
 /// A heading that lines up with "signal" and "filter".
 std::string field(const TextStyle& style, std::string_view key, const std::string& value) {
-    std::string lines = wrapped(style, value, field_columns);
-    lines.replace(0, std::min(field_columns, lines.size()), padded(key, field_columns));
-    return lines;
+    return labelled(style, key, value, field_columns);
 }
 
 std::string sums_text(const PredictedError& error, const Figures& figures, const std::string& unit) {

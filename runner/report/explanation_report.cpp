@@ -14,9 +14,7 @@ constexpr std::size_t field_columns = 13;  // two blanks, the longest key, a gap
 constexpr std::size_t most_members_told = 8;
 
 std::string field(const TextStyle& style, std::string_view key, const std::string& value) {
-    std::string lines = wrapped(style, value, field_columns);
-    lines.replace(0, std::min(field_columns, lines.size()), padded("  " + std::string(key), field_columns));
-    return lines;
+    return labelled(style, "  " + std::string(key), value, field_columns);
 }
 
 std::string channels_text(const std::vector<int>& channels) {
@@ -75,6 +73,7 @@ std::string headline(const ExplainedChannels& one) {
     const SearchResult& search = one.finding.search;
     switch (one.finding.kind) {
         case FindingKind::as_declared:
+            if (one.is_since_a_run) return "as before";
             return one.finding.is_inferred ? "its arithmetic is found" : "as declared";
         case FindingKind::found:
             return first_of(search.classes.front()).what();
@@ -96,8 +95,9 @@ Ink ink_of(FindingKind kind) {
 
 std::string declared_text(const ExplainedChannels& one) {
     const CaptureFit& fit = one.finding.search.declared.fit;
-    const std::string as =
-        one.finding.is_inferred ? "in the nearest arithmetic that was found for it" : "as the plan declares it";
+    const std::string as = one.is_since_a_run        ? "as it was before"
+                           : one.finding.is_inferred ? "in the nearest arithmetic that was found for it"
+                                                     : "as the plan declares it";
     return as + " the board would first differ at " + wrong_text(one, fit);
 }
 
@@ -128,7 +128,10 @@ std::string evidence_lines(const ExplainedChannels& one, const TextStyle& style)
     const std::string all = "all " + amount_text(one) + ", bit for bit";
     if (finding.kind == FindingKind::as_declared) {
         out += field(style, "evidence",
-                     (finding.is_inferred ? "the words below reproduce " : "what the plan declares reproduces ") + all);
+                     (one.is_since_a_run    ? "the board of the run before reproduces "
+                      : finding.is_inferred ? "the words below reproduce "
+                                            : "what the plan declares reproduces ") +
+                         all);
     } else if (finding.kind == FindingKind::found) {
         out += field(style, "evidence", "reproduces " + all + "; " + declared_text(one));
     } else if (finding.kind == FindingKind::several) {
@@ -199,30 +202,6 @@ std::string symptom_lines(const ExplainedChannels& one, const TextStyle& style) 
     return field(style, "seen", text);
 }
 
-std::string channel_lines(const ExplainedChannels& one, const TextStyle& style) {
-    const Finding& finding = one.finding;
-    std::string out =
-        wrapped(style, channels_text(one.channels) + ": " + painted(style, ink_of(finding.kind), headline(one)), 0);
-    if (finding.kind == FindingKind::no_twin) {
-        if (finding.missing)
-            out += field(style, "missing", finding.missing->problem) + field(style, "remedy", finding.missing->remedy);
-        return out;
-    }
-    const auto& classes = finding.search.classes;
-    if (finding.kind == FindingKind::found) out += cause_lines(one, classes.front(), style);
-    for (std::size_t i = 0; finding.kind == FindingKind::several && i < classes.size(); ++i) {
-        out +=
-            field(style, "cause " + std::to_string(i + 1),
-                  first_of(classes[i]).what() + (i == 0 ? "" : "; told from the first by " + classes[i].separated_by));
-        out += cause_lines(one, classes[i], style);
-    }
-    out += evidence_lines(one, style) + symptom_lines(one, style);
-    if (finding.kind == FindingKind::as_declared && finding.is_inferred)
-        out += field(style, "to paste", "into the plan, which leaves it open") +
-               arithmetic_lines(finding.search.declared.hypothesis.board.filter);
-    return out;
-}
-
 std::string answer_text(const AskedQuestion& question) {
     std::string text;
     for (const AskedQuestion::RuledOut& cause : question.ruled_out)
@@ -247,6 +226,30 @@ std::string asked_lines(const Explanation& explanation, const TextStyle& style) 
 }
 
 }  // namespace
+
+std::string channel_lines(const ExplainedChannels& one, const TextStyle& style) {
+    const Finding& finding = one.finding;
+    std::string out =
+        wrapped(style, channels_text(one.channels) + ": " + painted(style, ink_of(finding.kind), headline(one)), 0);
+    if (finding.kind == FindingKind::no_twin) {
+        if (finding.missing)
+            out += field(style, "missing", finding.missing->problem) + field(style, "remedy", finding.missing->remedy);
+        return out;
+    }
+    const auto& classes = finding.search.classes;
+    if (finding.kind == FindingKind::found) out += cause_lines(one, classes.front(), style);
+    for (std::size_t i = 0; finding.kind == FindingKind::several && i < classes.size(); ++i) {
+        out +=
+            field(style, "cause " + std::to_string(i + 1),
+                  first_of(classes[i]).what() + (i == 0 ? "" : "; told from the first by " + classes[i].separated_by));
+        out += cause_lines(one, classes[i], style);
+    }
+    out += evidence_lines(one, style) + symptom_lines(one, style);
+    if (finding.kind == FindingKind::as_declared && finding.is_inferred)
+        out += field(style, "to paste", "into the plan, which leaves it open") +
+               arithmetic_lines(finding.search.declared.hypothesis.board.filter);
+    return out;
+}
 
 std::string arithmetic_lines(const FilterChain& chain) {
     std::vector<std::vector<std::string>> stages;

@@ -19,4 +19,7 @@ std::string explained_lines(const Explanation& explanation, const TextStyle& sty
 /// [filter.arithmetic] with the number of its stage as a comment.
 std::string arithmetic_lines(const FilterChain& chain);
 
+/// What explains one group of channels: the sentence, where, what to look at, the evidence.
+std::string channel_lines(const ExplainedChannels& one, const TextStyle& style);
+
 }  // namespace halflsb

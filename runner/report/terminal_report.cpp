@@ -15,9 +15,7 @@ constexpr std::size_t field_columns = 12;   // two blanks, the longest key, a ga
 constexpr std::size_t verdict_columns = 9;  // "undecided"
 
 std::string field(const TextStyle& style, std::string_view key, const std::string& value) {
-    std::string lines = wrapped(style, value, field_columns);
-    lines.replace(0, std::min(field_columns, lines.size()), padded("  " + std::string(key), field_columns));
-    return lines;
+    return labelled(style, "  " + std::string(key), value, field_columns);
 }
 
 std::string titled(const std::string& file, const std::string& title) {

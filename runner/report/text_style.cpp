@@ -93,6 +93,12 @@ std::string padded(std::string_view text, std::size_t columns) {
     return std::string(text) + std::string(columns > taken ? columns - taken : 0, ' ');
 }
 
+std::string labelled(const TextStyle& style, std::string_view key, const std::string& value, std::size_t column) {
+    std::string lines = wrapped(style, value, column);
+    lines.replace(0, std::min(column, lines.size()), padded(key, column));
+    return lines;
+}
+
 std::string padded_left(std::string_view text, std::size_t columns) {
     const std::size_t taken = columns_of(text);
     return std::string(columns > taken ? columns - taken : 0, ' ') + std::string(text);

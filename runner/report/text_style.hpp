@@ -29,6 +29,8 @@ std::string cut_to(const TextStyle& style, std::string_view text, std::size_t co
 
 /// Filled up with blanks to `columns`.
 std::string padded(std::string_view text, std::size_t columns);
+/// A key and, from the column on, its value, which may take several lines.
+std::string labelled(const TextStyle& style, std::string_view key, const std::string& value, std::size_t column);
 std::string padded_left(std::string_view text, std::size_t columns);
 
 struct Table {

@@ -16,6 +16,7 @@ struct ExplainedChannels {
     std::vector<std::string> cases;    ///< names of the captures, in the order in which the finding counts them
     std::int64_t samples = 0;          ///< of all of them, that a hypothesis must reproduce
     std::vector<PlanPosition> stages;  ///< where the plan says each stage of the channel's chain
+    bool is_since_a_run = false;       ///< the search began with the board of another run, not with the declared one
     double peak_ratio = 0.0;           ///< the level furthest from zero that was sent, of full scale
 };
 

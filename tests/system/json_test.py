@@ -106,6 +106,22 @@ class Json(Case):
         document = self.answer(halflsb("judge", self.folder / "none", "--json"), "judge", 65)
         self.assertEqual(document["error"]["kind"], "input")
 
+    def test_explain_that_asks_and_compare(self):
+        step = NOISE[:NOISE.index("[case.stimulus]")].replace("noise", "step") + \
+            '[case.stimulus]\nshape = "step"\nlength_samples = 500\nlevel_ratio = 0.30001\n'
+        plan = self.plan(step, filter_text='[arithmetic]\nrounding = "half-up"\n\n[[filter]]\nkind = "moving-average"\npoints = 16\n',
+                         rules='[[rule]]\nkind = "exact"\n')
+        old, new = self.folder / "old", self.folder / "new"
+        with self.virtual_board("--filter-set", "load-cell"):
+            self.assert_status(halflsb("check", plan, "--rig", self.rig(), "--out", old), 0)
+        with self.virtual_board("--filter-set", "load-cell", "--fault", "truncation"):
+            self.assert_status(halflsb("check", plan, "--rig", self.rig(), "--out", new), 1)
+            asked = self.answer(halflsb("explain", new, "--rig", self.rig(), "--json"), "explain", 0)["explanations"][0]["asked"]
+        self.assertEqual(len(asked[0]["questions"][0]["ruled_out"]), 1)
+        self.assertTrue(self.answer(halflsb("compare", old, new, "--json"), "compare", 1)["comparison"]["differs"])
+        self.assertFalse(self.answer(halflsb("compare", old, old, "--json"), "compare", 0)["comparison"]["differs"])
+        self.assertIsNone(self.answer(halflsb("compare", old, self.folder, "--json"), "compare", 65)["comparison"])
+
     def test_explain_of_a_run_and_of_none(self):
         for faults, finding, status in ((("A01",), "as declared", 0), (("added-noise",), "unknown", 2), (("S01",), "found", 0)):
             checked = self.check_json(faults=faults)

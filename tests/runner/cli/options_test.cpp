@@ -94,6 +94,11 @@ TEST_CASE("options: judge takes a run and perhaps a plan, accept a run, check se
     CHECK(judge.labels == Words{"quick"});
     CHECK(judge.json);
     CHECK(options_of({"judge", "out/run"}).plan.empty());
+    const Options compare = options_of({"compare", "out/old", "out/new", "--for", "5min"});
+    CHECK(compare.run == "out/old");
+    CHECK(compare.run_after == "out/new");
+    CHECK(compare.time_limit_s == 300.0);
+    CHECK(options_of({"explain", "out/run", "--rig", "a"}).rigs == Words{"a"});
     const Options accept = options_of({"accept", "out/run", "--samples", "1073741824", "--root", "."});
     CHECK(accept.run == "out/run");
     CHECK(accept.kept_samples == 1073741824);
@@ -126,6 +131,7 @@ TEST_CASE("options: without arguments a short usage on standard error, status 64
           "usage: halflsb check PLAN --rig RIG\n"
           "       halflsb judge RUN [PLAN]\n"
           "       halflsb explain RUN\n"
+          "       halflsb compare RUN RUN\n"
           "       halflsb accept RUN\n"
           "       halflsb predict PLAN\n"
           "       halflsb ports\n"
@@ -166,7 +172,7 @@ TEST_CASE("options: an unknown word is answered with the nearest known one", "[c
 
 TEST_CASE("options: an option in the wrong place says where it belongs", "[cli]") {
     CHECK(error_of({"predict", "p", "--image", "f"}) == "--image is not an option of predict\n  it belongs to check");
-    CHECK(error_of({"ports", "--case=x"}) == "--case is not an option of ports\n  it belongs to check, judge, explain, predict");
+    CHECK(error_of({"ports", "--case=x"}) == "--case is not an option of ports\n  it belongs to check, judge, explain, compare, predict");
     CHECK(error_of({"--rig", "r", "check", "p"}) == "--rig stands before the command\n  write it behind the command");
 }
 
@@ -184,6 +190,11 @@ TEST_CASE("options: what is too much or out of range is quoted", "[cli]") {
     CHECK(error_of({"predict", "p", "--rig", "r", "--rig", "s"}) == "--rig is given 2 times\n  give it once");
     CHECK(error_of({"judge", "run", "plan", "third"}) ==
           "'third' is one operand too many\n  judge takes one RUN and at most one PLAN");
+    CHECK(error_of({"compare", "old", "new", "third"}) ==
+          "'third' is one operand too many\n  compare takes a RUN and a second RUN");
+    CHECK(error_of({"compare", "old"}) ==
+          "compare needs a second RUN\n  for example: halflsb compare .halflsb/20261201T093000Z-cw7 "
+          ".halflsb/20261203T101500Z-cw7");
     CHECK(error_of({"judge", "run", ""}) == "the PLAN is an empty path" + hint);
     for (const std::string samples : {"0", "-1", "1.5", "1073741825", "many"}) {
         CHECK(error_of({"accept", "run", "--samples", samples}) ==
@@ -222,6 +233,7 @@ TEST_CASE("options: the parser knows exactly the options of the table, per comma
             INFO(command.name << " " << option.name);
             Words words{std::string(command.name)};
             if (!command.operand.empty()) words.push_back("p");
+            if (!command.second.empty()) words.push_back("q");
             const bool needs_rig = command.command == Command::check && option.name != "--rig";
             if (needs_rig) words = with(words, {"--rig", "r"});
             words.emplace_back(option.name);
