@@ -109,6 +109,10 @@ Finding find_cause(const BoardDescription& plan, CaptureSet& captures, const std
     }
     if (finding.kind == FindingKind::unknown || finding.kind == FindingKind::several)
         finding.symptoms = symptoms_of(finding.search.declared.hypothesis.board, captures);
+    if (finding.kind == FindingKind::unknown) {
+        if (const auto order = linear_order(plan.filter))
+            finding.linear = fit_linear(captures, order->feed_forward, order->feedback);
+    }
     return finding;
 }
 

@@ -4,6 +4,7 @@
 #include <functional>
 #include <optional>
 
+#include "oracle/explain/linear_fit.hpp"
 #include "oracle/explain/search.hpp"
 #include "oracle/explain/symptoms.hpp"
 
@@ -24,6 +25,7 @@ struct Finding {
     bool is_inferred = false;
     SearchResult search;
     std::optional<Symptoms> symptoms;  ///< of unknown and several: how the response differs from `search.declared`
+    std::optional<LinearFit> linear;   ///< of unknown: the linear filter that comes nearest, in the plan's order
     std::optional<Error> missing;      ///< of no_twin: what is missing
 };
 

@@ -3,6 +3,7 @@
 #include <algorithm>
 
 #include "oracle/explain/event_search.hpp"
+#include "oracle/explain/identified_changes.hpp"
 #include "oracle/explain/probes.hpp"
 #include "oracle/explain/single_changes.hpp"
 
@@ -56,6 +57,7 @@ private:
     void ones() {
         try_all(single_changes(declared_, captures_.signal()), &begun_);
         try_all(event_hypotheses(declared_, captures_, go_on_), nullptr);
+        if (exact_.empty()) try_all(identified_changes(declared_, captures_), &begun_);
     }
 
     void twos() {

@@ -62,6 +62,17 @@ Json symptoms_json(const Symptoms& seen, const ExplainedChannels& one) {
             {"longest_held_samples", seen.longest_held_samples}};
 }
 
+Json linear_json(const LinearFit& fit) {
+    Json b = Json::array(), a = Json::array();
+    for (const double each : fit.b) b.push_back(number_json(each));
+    for (const double each : fit.a) a.push_back(number_json(each));
+    return {{"b", std::move(b)},
+            {"a", std::move(a)},
+            {"offset_lsb", number_json(fit.offset_lsb)},
+            {"residual_lsb", number_json(fit.residual_lsb)},
+            {"samples", fit.samples}};
+}
+
 Json stages_json(const FilterChain& chain) {
     Json stages = Json::array();
     for (const FilterStage& stage : chain) stages.push_back(said_words(stage));
@@ -84,6 +95,7 @@ Json channels_json(const ExplainedChannels& one) {
             {"causes", std::move(classes)},
             {"nearest", search.nearest ? candidate_json(*search.nearest, one) : Json(nullptr)},
             {"seen", finding.symptoms ? symptoms_json(*finding.symptoms, one) : Json(nullptr)},
+            {"linear", finding.linear ? linear_json(*finding.linear) : Json(nullptr)},
             {"tried", search.tried},
             {"was_cut", search.was_cut},
             {"missing", error_json(finding.missing)}};

@@ -12,6 +12,9 @@ namespace {
 
 constexpr std::size_t field_columns = 13;  // two blanks, the longest key, a gap of two
 constexpr std::size_t most_members_told = 8;
+constexpr std::size_t most_coefficients_told = 12;
+/// A rounding of the output leaves 0.29 LSB rms, one of each of ten products 0.91.
+constexpr double linear_below_lsb = 1.0;
 
 std::string field(const TextStyle& style, std::string_view key, const std::string& value) {
     return labelled(style, "  " + std::string(key), value, field_columns);
@@ -202,6 +205,31 @@ std::string symptom_lines(const ExplainedChannels& one, const TextStyle& style) 
     return field(style, "seen", text);
 }
 
+std::string coefficients_text(const LinearFit& fit) {
+    std::string text;
+    const auto add = [&](const char* letter, const std::vector<double>& numbers, std::size_t first) {
+        for (std::size_t k = first; k < numbers.size(); ++k)
+            text += (text.empty() ? "" : ", ") + (letter + std::to_string(k)) + " = " + rounded_text(numbers[k], 6);
+    };
+    add("b", fit.b, 0);
+    add("a", fit.a, 1);
+    return text;
+}
+
+/// Of an unknown board: whether it is a linear filter, and which.
+std::string linear_line(const ExplainedChannels& one, const TextStyle& style) {
+    const auto& fit = one.finding.linear;
+    if (!fit) return "";
+    const std::size_t count = fit->b.size() + fit->a.size() - 1;
+    std::string text = "the nearest linear filter of as many coefficients as the plan has leaves " +
+                       lsb_text(fit->residual_lsb) + " rms of " + counted(fit->samples, "sample", "samples") +
+                       (fit->residual_lsb < linear_below_lsb ? ": the board is that filter and a rounding"
+                                                             : ": the board is no such filter");
+    text += "; at rest " + lsb_text(fit->offset_lsb);
+    if (count <= most_coefficients_told) text += "; " + coefficients_text(*fit);
+    return field(style, "linear", text);
+}
+
 std::string answer_text(const AskedQuestion& question) {
     std::string text;
     for (const AskedQuestion::RuledOut& cause : question.ruled_out)
@@ -244,7 +272,7 @@ std::string channel_lines(const ExplainedChannels& one, const TextStyle& style) 
                   first_of(classes[i]).what() + (i == 0 ? "" : "; told from the first by " + classes[i].separated_by));
         out += cause_lines(one, classes[i], style);
     }
-    out += evidence_lines(one, style) + symptom_lines(one, style);
+    out += evidence_lines(one, style) + symptom_lines(one, style) + linear_line(one, style);
     if (finding.kind == FindingKind::as_declared && finding.is_inferred)
         out += field(style, "to paste", "into the plan, which leaves it open") +
                arithmetic_lines(finding.search.declared.hypothesis.board.filter);

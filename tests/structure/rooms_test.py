@@ -18,7 +18,7 @@ ROOMS = {
     "oracle/measure": (["stimuli"], ["kissfft/", "boost/math/distributions/"]),
     "oracle/rules": (["oracle/measure"], []),
     "oracle/judge": (["oracle/rules", "oracle/arithmetic"], []),
-    "oracle/explain": (["oracle/judge"], []),
+    "oracle/explain": (["oracle/judge"], ["Eigen/"]),
     "runner/world": (ORACLE + ["stimuli"], ["spdlog/", "sha2.h", "os"]),
     "runner/link": (["runner/world", "stimuli"], ["boost/asio", "libserialport.h", "spdlog/", "os"]),
     "runner/wire": (["runner/link"], ["boost/crc.hpp", "spdlog/", "unistd.h"]),
