@@ -25,7 +25,7 @@ public:
         : signal_(signal),
           forward_(feed_forward),
           back_(feedback),
-          columns_(feed_forward + feedback + 1),
+          columns_(static_cast<Eigen::Index>(feed_forward + feedback + 1)),
           row_(columns_),
           squares_(Matrix::Zero(columns_, columns_)),
           products_(Vector::Zero(columns_)),
