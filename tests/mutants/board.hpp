@@ -32,7 +32,6 @@ private:
     std::vector<std::vector<Whole>> got_;  ///< of each channel all samples since the reset
     std::vector<Whole> sent_, held_;
     std::vector<Code>* out_ = nullptr;
-    std::size_t out_from_ = 0;
 };
 
 }  // namespace halflsb::mutants
