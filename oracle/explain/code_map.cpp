@@ -126,7 +126,8 @@ std::vector<NamedCodeMap> code_maps_of(const SampleFormat& format) {
         }
     }
     add(CodeMapKind::negated, 0, "the opposite sign", 5);
-    add(CodeMapKind::negated_wrapping, 0, "the opposite sign in two's complement, in which the lowest number is its own opposite", 5.5);
+    add(CodeMapKind::negated_wrapping, 0,
+        "the opposite sign in two's complement, in which the lowest number is its own opposite", 5.5);
     add(CodeMapKind::complemented, 0, "each bit inverted", 7);
     add(CodeMapKind::offset_kept, 0, "half the range added to each number", 6);
     add(CodeMapKind::offset_missing, 0, "half the range subtracted from each number", 6);

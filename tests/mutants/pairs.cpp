@@ -142,8 +142,10 @@ void floats(List& list) {
     list.add("F03", Fault::never_cleared, "a mean of all samples since the reset", {"average, float32"});
     list.add("F04", Fault::double_literal, "computed in double precision", {"one-pole, float32"});
     list.add("F04", Fault::double_literal, "computed in double precision", {"one-pole, float32 inside"});
-    list.add("F10", Fault::cast, "toward-zero in place of half-even + an output that wraps | "
-                                 "toward-zero in place of half-even", {"one-pole, float32 inside"});
+    list.add("F10", Fault::cast,
+             "toward-zero in place of half-even + an output that wraps | "
+             "toward-zero in place of half-even",
+             {"one-pole, float32 inside"});
     list.add("F11", Fault::none, "", {"biquad 0.001, float32"});
 }
 
@@ -151,7 +153,8 @@ void representations(List& list) {
     list.add("N01", Fault::offset_kept, "at the input: the top bit inverted", all_kinds);
     list.add("N01 wide", Fault::offset_kept_wide, "at the input: half the range added to each number", all_kinds);
     list.add("N02", Fault::read_unsigned, "at the input: negative numbers taken as unsigned ones", all_kinds);
-    list.add("N03", Fault::read_unsigned, "at the input: negative numbers taken as unsigned ones", {"biquad 0.02, 24 bits"});
+    list.add("N03", Fault::read_unsigned, "at the input: negative numbers taken as unsigned ones",
+             {"biquad 0.02, 24 bits"});
     list.add("N04", Fault::bytes_swapped, "at the input: the bytes of each word in the opposite order", all_kinds);
     list.add("N06", Fault::negated, "at the input: the opposite sign in two's complement", all_kinds);
     list.add("N08", Fault::no_data, "each 500 samples from 499 on: the lowest code comes in place of a sample", steady);
