@@ -94,8 +94,10 @@ private:
                 [=](FilterStage& changed) { changed.arithmetic.coefficient_rounding = rounding; });
         }
         for (int fewer = 1; fewer < *bits; ++fewer) {
+            const bool is_usual = fewer % 8 >= 5 && fewer > 5;  // of words of 8, 16, 24, 32 bits that hold up to 4
             add("coefficients in steps of 2^-" + std::to_string(fewer), "the word length of the coefficients",
-                usual_bits + 3.0, [=](FilterStage& changed) { set_coefficient_fraction_bits(changed, fewer); });
+                usual_bits + (is_usual ? 2.0 : 4.0),
+                [=](FilterStage& changed) { set_coefficient_fraction_bits(changed, fewer); });
         }
     }
 

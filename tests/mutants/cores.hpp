@@ -249,7 +249,9 @@ private:
     }
     Whole added(Whole acc, Whole term) const {
         if (fault_ == Fault::products_upper) return wrapped(((acc << 32) + term + 0x80000000) >> 32, 32);
-        return fault_ == Fault::sum_32 ? wrapped(acc + term, 32) : acc + term;
+        // Partial sums of 32-bit words may wrap in 64 bits; the last one does not.
+        const auto sum = static_cast<Whole>(static_cast<std::uint64_t>(acc) + static_cast<std::uint64_t>(term));
+        return fault_ == Fault::sum_32 ? wrapped(sum, 32) : sum;
     }
     Whole form_1(Whole x) {
         Whole acc = 0;

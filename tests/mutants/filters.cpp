@@ -114,11 +114,12 @@ void add_sections(std::vector<FilterUnderTest>& all) {
                            usual_sections(14, "rounding = \"floor\"\nfraction_saving = \"on\"\n")));
     all.push_back(low_pass("resonant biquad 0.1", 0.1, {16, 14, 8}, "q15", usual_sections(), 6.0));
     all.push_back(low_pass("high-pass 0.02", 0.02, {16, 14, 8}, "q15", usual_sections(), 0.70710678118654752, true));
-    all.push_back(low_pass("biquad 0.001 in q30", 0.001, {16, 30, 8}, "q15", usual_sections(30)));
+    const std::string wide =
+        "structure = \"direct-1\"\ncoefficient_fraction_bits = 30\noutput_overflow = \"saturate\"\n"
+        "rounding = \"half-up\"\n";
+    all.push_back(low_pass("biquad 0.001, 32 bits", 0.001, {32, 30, 8}, "q31", wide));
     all.push_back(low_pass("biquad 0.02, 24 bits", 0.02, {24, 14, 8}, "i24", usual_sections()));
-    all.push_back(low_pass("biquad 0.1, 32 bits", 0.1, {32, 30, 8}, "q31",
-                           "structure = \"direct-1\"\ncoefficient_fraction_bits = 30\noutput_overflow = \"saturate\"\n"
-                           "rounding = \"half-up\"\n"));
+    all.push_back(low_pass("biquad 0.1, 32 bits", 0.1, {32, 30, 8}, "q31", wide));
     const Section first = second_order(0.1, 4.0, false, Fault::none),
                   second = second_order(0.02, 0.7, false, Fault::none);
     const auto written = [](const Section& s) {

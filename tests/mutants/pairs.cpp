@@ -58,16 +58,17 @@ void overflows(List& list) {
              {"average", "FIR symmetric", "FIR asymmetric", "resonant biquad 0.1", "high-pass 0.02"});
     list.add("A08", Fault::feedback_unheld, "feedback before the output's overflow",
              {"biquad 0.1", "biquad 0.02", "biquad 0.004", "resonant biquad 0.1", "high-pass 0.02"});
-    list.add("A09", Fault::held_between, "stage 1: i16 words between", {"two sections"});
+    list.add("A09", Fault::held_between, "stage 1: i16 words between this stage and the next", {"two sections"});
     list.add("A10", Fault::sum_32, "an accumulator of 32 bits", taps);
     list.add("A11", Fault::sum_32, "an accumulator of 32 bits",
              {"biquad 0.1", "biquad 0.02", "biquad 0.004", "resonant biquad 0.1"});
     list.add("A12", Fault::direct_2, "direct-2 in place of direct-1", sections);
     list.add("A12 wraps", Fault::direct_2_wraps, "direct-2 in place of direct-1 + an output that wraps", sections);
     list.add("A13", Fault::output_wraps, "an output that wraps", sections);
-    list.add("A15", Fault::narrow_state, "a state in the output's words", {"one-pole"});
-    list.add("A15 divided", Fault::narrow_divided, "a state in the output's words + toward-zero in place of floor",
-             {"one-pole"});
+    list.add("A15", Fault::narrow_state,
+             "a state in the output's words, to which the difference is added, shortened by floor", {"one-pole"});
+    list.add("A15 divided", Fault::narrow_divided,
+             "a state in the output's words, to which the difference is added, shortened by toward-zero", {"one-pole"});
     list.add("A22", Fault::sum_16, "an accumulator of 16 bits", {"average", "average, floor"});
     list.add("A22", Fault::sum_16, "a state of 16 bits", {"one-pole"});
     list.add("A22 unsigned", Fault::sum_u16, "an unsigned accumulator of 16 bits", {"average", "average, floor"});
@@ -78,7 +79,7 @@ void coefficients(List& list) {
     list.add("C01", Fault::coarse, "coefficients in steps of 2^-6", {"biquad 0.1"});
     list.add("C01", Fault::coarse, "coefficients in steps of 2^-8", {"biquad 0.02"});
     list.add("C01", Fault::coarse, "coefficients in steps of 2^-12", {"biquad 0.004"});
-    list.add("C02", Fault::q14, "coefficients in steps of 2^-14", {"biquad 0.001 in q30"});
+    list.add("C02", Fault::q14, "coefficients in steps of 2^-14", {"biquad 0.001, 32 bits"});
     list.add("C03", Fault::cut, "coefficients cut off toward zero", products);
     list.add("C04", Fault::scale_less, "coefficients times 2^15 - 1, not times 2^15", taps);
     list.add("C04", Fault::scale_less, "coefficients times 2^14 - 1/2, not times 2^14", sections);
@@ -142,9 +143,7 @@ void floats(List& list) {
     list.add("F03", Fault::never_cleared, "a mean of all samples since the reset", {"average, float32"});
     list.add("F04", Fault::double_literal, "computed in double precision", {"one-pole, float32"});
     list.add("F04", Fault::double_literal, "computed in double precision", {"one-pole, float32 inside"});
-    list.add("F10", Fault::cast,
-             "toward-zero in place of half-even + an output that wraps | "
-             "toward-zero in place of half-even",
+    list.add("F10", Fault::cast, "toward-zero in place of half-even, into an output that wraps",
              {"one-pole, float32 inside"});
     list.add("F11", Fault::none, "", {"biquad 0.001, float32"});
 }
