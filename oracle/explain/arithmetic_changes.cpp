@@ -18,6 +18,8 @@ std::string where_to_look(std::string_view what) {
     if (says("product")) return "whether each product is shifted before it is added";
     if (says("fraction")) return "whether the remainder is kept for the next sum";
     if (says("fused")) return "the compiler's contraction of products and sums";
+    if (says("words between")) return "the type of what one stage hands to the next";
+    if (says("a state ")) return "the type in which the filter keeps its past";
     if (says("added first")) return "the order of the loop over the taps";
     if (says("in place of") && (says("direct") || says("transposed") || says("sum")))
         return "the structure of the section";
@@ -38,8 +40,14 @@ public:
                 [&](FilterStage& stage) { stage.arithmetic = each.arithmetic; });
         }
         for (std::size_t i = 0; i < filter.size(); ++i) {
-            if (described->stages[i].number != NumberKind::integer) continue;
+            if (described->stages[i].number != NumberKind::integer) {
+                conversion(i, described->stages[i]);
+                continue;
+            }
             products(i, described->stages[i]);
+            upper_words(i, described->stages[i]);
+            states(i, described->stages[i]);
+            between(i, described->stages[i]);
             constants(i, described->stages[i]);
             widths(i, described->stages[i]);
         }
@@ -66,6 +74,98 @@ private:
                     changed.arithmetic.rounding = rounding;
                     changed.arithmetic.fraction_saving = false;
                 });
+        }
+    }
+
+    /// Kernels for 32-bit words that keep the upper word of each product.
+    void upper_words(std::size_t i, const DescribedStage& stage) {
+        constexpr int word_bits = 32;
+        if (stage.out.word.bits != word_bits || !has_word(stage.stage, "accumulator_bits")) return;
+        const int kept = stage.in.word.fraction_bits + stage.coefficient_fraction_bits - word_bits;
+        if (kept < 0) return;
+        for (const Rounding rounding : {stage.rounding, Rounding::floor}) {
+            const bool is_floor = rounding == Rounding::floor;
+            add(i,
+                std::string("the upper 32 bits of each product, ") + (is_floor ? "cut off" : "rounded") +
+                    ", summed in 32 bits",
+                5.0, [&](FilterStage& changed) {
+                    changed.arithmetic.accumulator_bits = word_bits;
+                    changed.arithmetic.accumulator_fraction_bits = kept;
+                    changed.arithmetic.accumulator_overflow = Overflow::wrap;
+                    changed.arithmetic.rounding_at = RoundingAt::sum;
+                    changed.arithmetic.rounding = rounding;
+                    changed.arithmetic.fraction_saving = false;
+                });
+            if (is_floor) break;
+        }
+    }
+
+    /// What is kept from sample to sample in fewer bits, or without a fraction.
+    void states(std::size_t i, const DescribedStage& stage) {
+        if (!has_word(stage.stage, "state_bits") || stage.stage.kind == "cic-decimator" ||
+            stage.stage.kind == "cic-interpolator")
+            return;
+        for (const int bits : {16, 24, 32}) {
+            if (bits >= stage.state.bits) continue;
+            add(i, "a state of " + std::to_string(bits) + " bits", 5.5,
+                [&](FilterStage& changed) { changed.arithmetic.state_bits = bits; });
+        }
+        const Word& out = stage.out.word;
+        if (stage.state.bits == out.bits && stage.state.fraction_bits == out.fraction_bits) return;
+        const auto as_out = [&](FilterStage& changed) {
+            changed.arithmetic.state_bits = out.bits;
+            changed.arithmetic.state_fraction_bits = out.fraction_bits;
+        };
+        add(i, "a state in the output's words", 5.0, as_out);
+        if (stage.structure != Structure::leak) return;
+        for (const Rounding rounding : {stage.rounding, Rounding::toward_zero, Rounding::half_up}) {
+            add(i,
+                "a state in the output's words, to which the difference is added, shortened by " +
+                    std::string(name_of(rounding)),
+                5.5, [&](FilterStage& changed) {
+                    as_out(changed);
+                    changed.arithmetic.structure = Structure::difference;
+                    changed.arithmetic.rounding = rounding;
+                });
+        }
+    }
+
+    /// Words that a stage hands to the next one.
+    void between(std::size_t i, const DescribedStage& stage) {
+        if (i + 1 >= from_.board.filter.size()) return;
+        const bool feeds_back = has_word(stage.stage, "state_bits");
+        for (const char* const name : {"i16", "q15", "i24", "i32", "q31"}) {
+            const auto format = sample_format(name);
+            add(i, std::string(name) + " words between this stage and the next", 5.0, [&](FilterStage& changed) {
+                changed.arithmetic.stage_format = *format;
+                if (!feeds_back) return;
+                // What is fed back stays as it was.
+                changed.arithmetic.state_bits = stage.state.bits;
+                changed.arithmetic.state_fraction_bits = stage.state.fraction_bits;
+                changed.arithmetic.state_overflow = stage.state.overflow;
+            });
+            if (!feeds_back) continue;
+            add(i, std::string(name) + " words between this stage and the next, and fed back", 5.5,
+                [&](FilterStage& changed) { changed.arithmetic.stage_format = *format; });
+        }
+    }
+
+    /// Of floats into the words that are sent: a cast cuts off, and holds nothing.
+    void conversion(std::size_t i, const DescribedStage& stage) {
+        if (i + 1 < from_.board.filter.size() || stage.out.is_float) return;
+        for (const std::string_view name : rounding_names()) {
+            const Rounding rounding = *rounding_from(name);
+            for (const bool wraps : {false, true}) {
+                std::string what = rounding == stage.rounding
+                                       ? ""
+                                       : std::string(name) + " in place of " + std::string(name_of(stage.rounding));
+                if (wraps) what += what.empty() ? "an output that wraps" : ", into an output that wraps";
+                if (what.empty()) continue;
+                add(i, std::move(what), wraps ? 4.5 : 4.0, [&](FilterStage& changed) {
+                    changed.arithmetic.rounding = rounding;
+                    if (wraps) changed.arithmetic.output_overflow = Overflow::wrap;
+                });
+            }
         }
     }
 

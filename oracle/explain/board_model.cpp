@@ -58,8 +58,8 @@ void BoardModel::begin_case(Start start, std::int64_t start_samples) {
     index_ = 0;
     repeat_left_ = 0;
     held_ = zero_code(output_);
-    past_in_.assign(static_cast<std::size_t>(passage_.length), zero_code(input_));
-    past_out_.assign(static_cast<std::size_t>(passage_.length), zero_code(output_));
+    past_in_.assign(static_cast<std::size_t>(passage_.samples_ago()), zero_code(input_));
+    past_out_.assign(static_cast<std::size_t>(passage_.samples_ago()), zero_code(output_));
     if (start != Start::flush) return;
     std::vector<Code> zeros(piece_samples, zero_code(input_)), lost;
     apply(input_map_, input_, zeros);
@@ -160,7 +160,7 @@ void BoardModel::pass_events(std::span<const Code> in, std::vector<Code>& out) {
     out.insert(out.end(), passed.begin(), passed.end());
     past_out_.insert(past_out_.end(), passed.begin(), passed.end());
     const auto keep = [&](std::vector<Code>& past) {
-        const std::ptrdiff_t surplus = std::ssize(past) - passage_.length;
+        const std::ptrdiff_t surplus = std::ssize(past) - passage_.samples_ago();
         if (surplus > 0) past.erase(past.begin(), past.begin() + surplus);
     };
     keep(past_in_);
@@ -171,10 +171,7 @@ void BoardModel::pass_events(std::span<const Code> in, std::vector<Code>& out) {
 void BoardModel::event(std::span<const Code> in, std::size_t& at, std::vector<Code>& out) {
     const Code code = in[at++];
     Code fed = code;
-    if (repeat_left_ == 0 &&
-        (passage_.kind == PassageKind::block_repeated || passage_.kind == PassageKind::output_block_repeated)) {
-        repeat_left_ = passage_.length;
-    }
+    if (repeat_left_ == 0 && has_blocks(passage_.kind)) repeat_left_ = passage_.length;
     const Code last = output_ago(out, 1);
     switch (passage_.kind) {
         case PassageKind::lost:
@@ -199,13 +196,17 @@ void BoardModel::event(std::span<const Code> in, std::size_t& at, std::vector<Co
             break;
         case PassageKind::block_repeated:
             --repeat_left_;
-            fed = past_in_[past_in_.size() - static_cast<std::size_t>(passage_.length)];
+            fed = past_in_[past_in_.size() - static_cast<std::size_t>(passage_.samples_ago())];
             out.push_back(run_one(fed));
             break;
         case PassageKind::output_block_repeated:
             --repeat_left_;
             run_one(code);
-            out.push_back(output_ago(out, passage_.length));
+            out.push_back(output_ago(out, passage_.samples_ago()));
+            break;
+        case PassageKind::block_skipped:
+            --repeat_left_;
+            out.push_back(output_ago(out, passage_.samples_ago()));
             break;
         case PassageKind::sample_replaced:
             fed = static_cast<Code>(zero_code(input_) - (std::int64_t{1} << (input_.word_bits - 1)));
@@ -225,7 +226,8 @@ void BoardModel::event(std::span<const Code> in, std::size_t& at, std::vector<Co
         default:
             break;
     }
-    past_in_.push_back(fed);
+    // What is taken again is what the line brought.
+    past_in_.push_back(has_blocks(passage_.kind) ? code : fed);
     ++index_;
 }
 

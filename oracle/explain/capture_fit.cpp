@@ -87,6 +87,37 @@ CaptureFit CaptureSet::until_first_wrong(const BoardDescription& board) const {
     return fit;
 }
 
+CaptureFit CaptureSet::until_first_wrong_in(std::size_t index, const BoardDescription& board) const {
+    CaptureFit fit;
+    const auto model = BoardModel::make(board, signal_);
+    if (model == nullptr) return fit;
+    const OneCase one = run_case(*model, captures_[index]);
+    fit.could_run = true;
+    fit.compared = one.compared;
+    fit.equal = one.equal;
+    if (one.wrong_index >= 0) fit.wrong_case = static_cast<int>(index);
+    fit.wrong_index = one.wrong_index;
+    return fit;
+}
+
+std::optional<std::size_t> CaptureSet::liveliest() const {
+    if (is_chained_) return std::nullopt;
+    std::optional<std::size_t> best;
+    std::size_t most = 0;
+    for (std::size_t i = 0; i < captures_.size(); ++i) {
+        const auto& sent = captures_[i].sent;
+        std::vector<std::int64_t> steps;
+        for (std::size_t n = 1; n < std::min<std::size_t>(sent.size(), 2048); ++n)
+            steps.push_back(std::int64_t{sent[n]} - sent[n - 1]);
+        std::sort(steps.begin(), steps.end());
+        const auto different = static_cast<std::size_t>(std::unique(steps.begin(), steps.end()) - steps.begin());
+        if (different <= most) continue;
+        most = different;
+        best = i;
+    }
+    return best;
+}
+
 void CaptureSet::order_by(const BoardDescription& declared) {
     const auto model = BoardModel::make(declared, signal_);
     if (model == nullptr || is_chained_) return;

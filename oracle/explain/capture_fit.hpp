@@ -3,6 +3,7 @@
 
 #include <cstddef>
 #include <cstdint>
+#include <optional>
 #include <string>
 #include <vector>
 
@@ -46,6 +47,11 @@ public:
 
     /// Up to the first sample that differs.
     CaptureFit until_first_wrong(const BoardDescription& board) const;
+    /// Of one case alone, from a reset; only where no case hangs on the one before.
+    CaptureFit until_first_wrong_in(std::size_t index, const BoardDescription& board) const;
+    /// The case whose stimulus moves by most different steps: what happens at some samples alone is seen there at once.
+    /// None where cases hang on each other.
+    std::optional<std::size_t> liveliest() const;
     /// The board as declared decides what is looked at first: the cases where it goes wrong soonest.
     void order_by(const BoardDescription& declared);
     /// The cases with most different codes at their start first: of a board that nobody described.

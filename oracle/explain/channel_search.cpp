@@ -1,6 +1,7 @@
 #include "oracle/explain/channel_search.hpp"
 
 #include <algorithm>
+#include <cmath>
 #include <string>
 
 #include "oracle/explain/board_model.hpp"
@@ -23,6 +24,10 @@ public:
             if (auto found = others_output(other, name)) return found;
         }
         if (auto found = shared_filter()) return found;
+        for (std::size_t other = 0; other < boards_.size(); ++other) {
+            if (other == channel_) continue;
+            if (auto found = moved_on(other, "channel " + std::to_string(other + 1))) return found;
+        }
         for (std::size_t other = 0; other < boards_.size(); ++other) {
             if (other == channel_) continue;
             if (auto found = leak(other, "channel " + std::to_string(other + 1))) return found;
@@ -84,6 +89,41 @@ private:
                          4.5);
     }
 
+    /// Another channel's samples from some sample of each case on: the first at which any case goes wrong, or a few
+    /// before.
+    std::optional<Candidate> moved_on(std::size_t other, const std::string& name) const {
+        const auto model = BoardModel::make(boards_[channel_].declared, signal_);
+        if (model == nullptr) return std::nullopt;
+        const std::vector<Codes> plain = returned(boards_[channel_].declared, channel_);
+        std::ptrdiff_t first = -1;
+        for (std::size_t i = 0; i < plain.size(); ++i) {
+            const Codes& response = own()[i].response;
+            const auto count = std::min(std::ssize(plain[i]), std::ssize(response));
+            const std::ptrdiff_t at =
+                std::mismatch(response.begin(), response.begin() + count, plain[i].begin()).first - response.begin();
+            if (at < count && (first < 0 || at < first)) first = at;
+        }
+        constexpr std::ptrdiff_t most_before = 8;
+        for (std::ptrdiff_t at = first; at > 0 && at >= first - most_before; --at) {
+            std::vector<Codes> all;
+            for (std::size_t i = 0; i < own().size(); ++i) {
+                Codes sent = own()[i].sent;
+                const Codes& others = (*boards_[other].captures)[i].sent;
+                const auto from = std::min(at, std::ssize(sent));
+                std::copy(others.begin() + from, others.end(), sent.begin() + from);
+                model->begin_case(own()[i].start, own()[i].start_samples);
+                all.emplace_back();
+                model->process(sent, all.back());
+            }
+            if (is_own_response(all)) {
+                return candidate("from sample " + std::to_string(at) + " on its filter gets the samples of " + name,
+                                 "where a transfer of all channels begins again after an overrun",
+                                 8.0 + std::log2(1.0 + static_cast<double>(at)));
+            }
+        }
+        return std::nullopt;
+    }
+
     /// Sample by sample, in the order of the channels.
     std::optional<Candidate> shared_filter() const {
         const BoardDescription& board = boards_[channel_].declared;
@@ -113,27 +153,30 @@ private:
             for (const bool is_input : {true, false}) {
                 if (!is_input && outputs.empty()) continue;
                 const std::string part = bits == 0 ? "all" : "1/" + std::to_string(1 << bits);
-                std::vector<Codes> with = plain;
-                for (std::size_t i = 0; i < with.size(); ++i) {
-                    const Codes& codes = is_input ? (*boards_[other].captures)[i].sent : outputs[i];
-                    add(codes, bits, is_input ? signal_.input : signal_.output, with[i]);
-                }
-                if (is_own_response(with)) {
-                    return candidate(
-                        part + " of the " + (is_input ? "input" : "output") + " of " + name + " is added to its output",
-                        "what is shared by the channels, and the analogue side", 6.0 + bits);
+                for (const bool wraps : {false, true}) {
+                    std::vector<Codes> with = plain;
+                    for (std::size_t i = 0; i < with.size(); ++i) {
+                        const Codes& codes = is_input ? (*boards_[other].captures)[i].sent : outputs[i];
+                        add(codes, bits, is_input ? signal_.input : signal_.output, wraps, with[i]);
+                    }
+                    if (!is_own_response(with)) continue;
+                    return candidate(part + " of the " + (is_input ? "input" : "output") + " of " + name +
+                                         " is added to its output" + (wraps ? ", which wraps" : ""),
+                                     "what is shared by the channels, and the analogue side",
+                                     6.0 + bits + (wraps ? 1.0 : 0.0));
                 }
             }
         }
         return std::nullopt;
     }
 
-    void add(const Codes& codes, int bits, const SampleFormat& format, Codes& to) const {
+    void add(const Codes& codes, int bits, const SampleFormat& format, bool wraps, Codes& to) const {
         const std::int64_t zero = zero_code(format), half = std::int64_t{1} << (signal_.output.word_bits - 1);
         const std::int64_t out_zero = zero_code(signal_.output);
         for (std::size_t n = 0; n < std::min(codes.size(), to.size()); ++n) {
             const std::int64_t sum = to[n] - out_zero + ((codes[n] - zero) >> bits);
-            to[n] = static_cast<Code>(out_zero + std::clamp(sum, -half, half - 1));
+            const std::int64_t held = wraps ? ((sum + half) & (2 * half - 1)) - half : std::clamp(sum, -half, half - 1);
+            to[n] = static_cast<Code>(out_zero + held);
         }
     }
 

@@ -26,6 +26,10 @@ std::int64_t changed(const CodeMap& map, std::int64_t half_range, std::int64_t x
     switch (map.kind) {
         case CodeMapKind::negated:
             return held(-x);
+        case CodeMapKind::negated_wrapping:
+            return x == -half_range ? x : -x;
+        case CodeMapKind::negative_is_above:
+            return x < 0 ? x + range : x;
         case CodeMapKind::complemented:
             return -x - 1;
         case CodeMapKind::offset_kept:
@@ -122,12 +126,15 @@ std::vector<NamedCodeMap> code_maps_of(const SampleFormat& format) {
         }
     }
     add(CodeMapKind::negated, 0, "the opposite sign", 5);
+    add(CodeMapKind::negated_wrapping, 0,
+        "the opposite sign in two's complement, in which the lowest number is its own opposite", 5.5);
     add(CodeMapKind::complemented, 0, "each bit inverted", 7);
     add(CodeMapKind::offset_kept, 0, "half the range added to each number", 6);
     add(CodeMapKind::offset_missing, 0, "half the range subtracted from each number", 6);
     add(CodeMapKind::top_bit_inverted, 0, "the top bit inverted (offset binary for two's complement)", 6);
     add(CodeMapKind::sign_lost, 0, "the sign bit cleared", 7);
     add(CodeMapKind::negative_is_top, 0, "negative numbers read as unsigned and held at the top", 7);
+    add(CodeMapKind::negative_is_above, 0, "negative numbers taken as unsigned ones, beyond the top", 6.5);
     add(CodeMapKind::negative_is_zero, 0, "negative numbers discarded", 8);
     add(CodeMapKind::lowest_raised, 0, "the lowest code not used", 9);
     for (int amount = 1; amount < format.word_bits && amount <= 16; ++amount) {

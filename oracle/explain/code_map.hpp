@@ -13,6 +13,7 @@ namespace halflsb {
 enum class CodeMapKind {
     none,
     negated,            ///< the opposite value; of the lowest code the highest
+    negated_wrapping,   ///< the opposite number in two's complement: the lowest code is its own
     complemented,       ///< each bit inverted: the opposite value less one step
     other_layout,       ///< the bytes are those of `layout`: another byte order or justification
     halves_swapped,     ///< the two 16-bit halves of a word of 32
@@ -21,6 +22,7 @@ enum class CodeMapKind {
     top_bit_inverted,   ///< offset binary taken for two's complement, or the other way
     sign_lost,          ///< the sign bit is cleared: a negative number lies half the range below the top
     negative_is_top,    ///< a negative number is read as unsigned and held at the highest code
+    negative_is_above,  ///< a negative number is read as unsigned in a wider word
     negative_is_zero,   ///< a negative number is discarded
     low_bits_cleared,   ///< the lowest `amount` bits are 0
     moved_up,           ///< times 2^amount, held at the ends

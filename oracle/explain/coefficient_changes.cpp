@@ -93,10 +93,11 @@ private:
             add("coefficients " + how, "the conversion of the coefficients", usual_bits - 0.5,
                 [=](FilterStage& changed) { changed.arithmetic.coefficient_rounding = rounding; });
         }
-        for (const int fewer : {7, 10, 11, 12, 13, 14, 15, 23, 24, 28, 29, 30}) {
-            if (fewer >= *bits) continue;
+        for (int fewer = 1; fewer < *bits; ++fewer) {
+            const bool is_usual = fewer % 8 >= 5 && fewer > 5;  // of words of 8, 16, 24, 32 bits that hold up to 4
             add("coefficients in steps of 2^-" + std::to_string(fewer), "the word length of the coefficients",
-                usual_bits + 3.0, [=](FilterStage& changed) { set_coefficient_fraction_bits(changed, fewer); });
+                usual_bits + (is_usual ? 2.0 : 4.0),
+                [=](FilterStage& changed) { set_coefficient_fraction_bits(changed, fewer); });
         }
     }
 

@@ -6,6 +6,7 @@
 #include <utility>
 
 #include "oracle/explain/coefficient_changes.hpp"
+#include "oracle/explain/section_changes.hpp"
 
 namespace halflsb {
 namespace {
@@ -158,12 +159,11 @@ private:
         for (std::size_t i = 0; i < count; ++i) {
             const double which = std::log2(static_cast<double>(count));
             const std::string of = count > 1 ? "section " + std::to_string(i + 1) + ": " : "";
-            const auto with = [&, i](const std::string& what, double price_bits,
-                                     std::function<void(BiquadSection&)> alter) {
-                add(of + what, "the table of coefficients and its order", price_bits + which,
-                    [alter, i](FilterStage& changed) { alter(std::get<BiquadCascade>(changed.design).sections[i]); });
-            };
-            section_changes(with);
+            for (const NamedSection& each : section_changes(cascade.sections[i], stage().coefficient_fraction_bits)) {
+                add(of + each.what, "the table of coefficients, its order and what computes it",
+                    each.price_bits + which,
+                    [&](FilterStage& changed) { std::get<BiquadCascade>(changed.design).sections[i] = each.section; });
+            }
         }
         if (count < 2) return;
         add("the sections in the opposite order", "the order of the table", usual_bits + 1.0, [](FilterStage& changed) {
@@ -177,33 +177,6 @@ private:
                     list.erase(list.begin() + static_cast<std::ptrdiff_t>(i));
                 });
         }
-    }
-
-    template <class With>
-    static void section_changes(const With& with) {
-        with("a1 with the opposite sign", usual_bits, [](BiquadSection& s) { s.a1 = -s.a1; });
-        with("a2 with the opposite sign", usual_bits, [](BiquadSection& s) { s.a2 = -s.a2; });
-        with("a1 and a2 with the opposite sign", usual_bits - 1.0, [](BiquadSection& s) {
-            s.a1 = -s.a1;
-            s.a2 = -s.a2;
-        });
-        with("b0 and b2 exchanged", usual_bits, [](BiquadSection& s) { std::swap(s.b0, s.b2); });
-        with("a1 and a2 exchanged", usual_bits, [](BiquadSection& s) { std::swap(s.a1, s.a2); });
-        with("b1 with the opposite sign", usual_bits + 1.0, [](BiquadSection& s) { s.b1 = -s.b1; });
-        with("x[n-1] written before x[n-2] was kept: both are the same sample", usual_bits, [](BiquadSection& s) {
-            s.b1 += s.b2;
-            s.b2 = 0.0;
-        });
-        with("y[n-1] written before y[n-2] was kept: both are the same sample", usual_bits, [](BiquadSection& s) {
-            s.a1 += s.a2;
-            s.a2 = 0.0;
-        });
-        with("b and a exchanged", usual_bits + 1.0, [](BiquadSection& s) {
-            const BiquadSection of = s;
-            s = {1.0 / of.b0, of.a1 / of.b0, of.a2 / of.b0, of.b1 / of.b0, of.b2 / of.b0};
-        });
-        with("b2 left out", usual_bits + 2.0, [](BiquadSection& s) { s.b2 = 0.0; });
-        with("a2 left out", usual_bits + 2.0, [](BiquadSection& s) { s.a2 = 0.0; });
     }
 
     void of(const Recursion&) {
@@ -238,8 +211,12 @@ private:
     void starts() {
         const auto start = [this](Initial initial, const char* what) {
             if (initial == stage().initial) return;
-            add(what, "what a reset writes into the state", usual_bits,
-                [initial](FilterStage& changed) { changed.initial = initial; });
+            add(what, "what a reset writes into the state", usual_bits, [initial](FilterStage& changed) {
+                changed.initial = initial;
+                // Until the window is full the divisor is no power of two; the numbers are those of a division.
+                if (initial == Initial::growing && changed.arithmetic.division == Division::shift)
+                    changed.arithmetic.division = Division::divide;
+            });
         };
         start(Initial::zeros, "a start from zeros");
         start(Initial::first_sample, "a start as if the first sample had always been there");

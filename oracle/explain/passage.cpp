@@ -9,6 +9,11 @@ bool has_events(PassageKind kind) {
            kind != PassageKind::twice;
 }
 
+bool has_blocks(PassageKind kind) {
+    return kind == PassageKind::block_repeated || kind == PassageKind::output_block_repeated ||
+           kind == PassageKind::block_skipped;
+}
+
 std::int64_t next_event(const Passage& passage, std::int64_t index) {
     if (!has_events(passage.kind)) return std::numeric_limits<std::int64_t>::max();
     if (index <= passage.first) return passage.first;

@@ -19,8 +19,9 @@ enum class PassageKind {
     doubled_shifted,        ///< at an event the sample comes twice, what follows is one later
     output_lost,            ///< at an event an output is lost behind the filter, what follows moves up by one
     output_doubled,         ///< at an event an output comes twice behind the filter, what follows is one later
-    block_repeated,         ///< from an event on `length` samples are those `length` before, for the filter
-    output_block_repeated,  ///< from an event on `length` outputs are those `length` before
+    block_repeated,         ///< from an event on `length` samples are those `delay` before, for the filter
+    output_block_repeated,  ///< from an event on `length` outputs are those `delay` before
+    block_skipped,          ///< from an event on `length` samples do not reach the filter, outputs as above
     sample_replaced,        ///< at an event the filter gets the lowest code
     state_cleared,          ///< before the sample of an event the state is that of a reset
     state_exchanged,        ///< before the sample of an event the last two words of the state change places
@@ -31,11 +32,15 @@ struct Passage {
     PassageKind kind = PassageKind::plain;
     std::int64_t length = 1;
     std::int64_t first = 0, period = 0;
+    std::int64_t delay = 0;  ///< of blocks; 0: `length`
+    std::int64_t samples_ago() const { return delay > 0 ? delay : length; }
     bool operator==(const Passage&) const = default;
 };
 
 /// The kind has events.
 bool has_events(PassageKind kind);
+/// Its events go on for `length` samples.
+bool has_blocks(PassageKind kind);
 /// The next event at or after `index`; a very large number when there is none.
 std::int64_t next_event(const Passage& passage, std::int64_t index);
 
