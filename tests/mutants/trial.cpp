@@ -162,7 +162,7 @@ Explained explained(const Plan& plan, const std::vector<std::vector<Code>>& resp
 std::vector<std::vector<Code>> further_stimuli(const Signal& signal) {
     const auto width = static_cast<std::size_t>(signal.channels);
     std::vector<std::vector<Code>> all;
-    for (const Probe& probe : probes_for(signal.input)) {
+    for (const Probe& probe : probes_for(signal)) {
         std::vector<Code> codes;
         for (std::size_t n = 0; n < probe.codes.size(); ++n)
             for (std::size_t c = 0; c < width; ++c) codes.push_back(probe.codes[(n + c * 1021) % probe.codes.size()]);
