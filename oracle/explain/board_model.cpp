@@ -27,11 +27,16 @@ BoardModel::BoardModel(const BoardDescription& board, const Signal& signal, std:
       input_map_(board.input),
       output_map_(board.output),
       reset_kind_(board.reset),
+      reset_places_(board.reset_places),
       filter_(board.filter),
       input_(signal.input),
       output_(signal.output),
       twin_(std::move(twin)),
-      held_(zero_code(signal.output)) {}
+      held_(zero_code(signal.output)) {
+    const bool asks = board.reset == ResetKind::ring_start || board.reset == ResetKind::ring_begun_anew ||
+                      board.reset == ResetKind::ring_places;
+    if (asks) ring_.assign(ring_length(board.filter), 0);
+}
 
 std::unique_ptr<BoardModel> BoardModel::make(const BoardDescription& board, const Signal& signal) {
     auto twin = twin_of(board, signal);
@@ -43,10 +48,15 @@ std::unique_ptr<BoardModel> BoardModel::make(const BoardDescription& board, cons
 }
 
 void BoardModel::reset() {
-    if (reset_kind_ == ResetKind::whole || is_first_case_) {
+    is_first_sample_ = reset_kind_ == ResetKind::first_sample;
+    if (reset_kind_ == ResetKind::whole || is_first_case_ || is_first_sample_) {
         twin_->reset();
     } else if (reset_kind_ != ResetKind::none) {
-        twin_->set_state(left_by(reset_kind_, filter_, twin_->state(), since_reset_));
+        StateBefore before{twin_->state(), since_reset_, 0};
+        if (!ring_.empty()) before.oldest = ring_[static_cast<std::size_t>(since_reset_) % ring_.size()];
+        twin_->reset();
+        const std::vector<std::int64_t> cleared = twin_->state();
+        twin_->set_state(left_by(reset_kind_, reset_places_, filter_, std::move(before), cleared));
     }
     // A place in a ring that stays is counted on.
     if (reset_kind_ != ResetKind::ring_start) since_reset_ = 0;
@@ -96,7 +106,19 @@ void BoardModel::pass(std::span<const Code> in, std::vector<Code>& out) {
     }
 }
 
+void BoardModel::keep(std::span<const Code> in) {
+    if (is_first_sample_ && !in.empty()) {
+        std::vector<std::int64_t> words(twin_->state().size(), std::int64_t{in.front()} - zero_code(input_));
+        twin_->set_state(words);
+        is_first_sample_ = false;
+    }
+    if (ring_.empty()) return;
+    for (std::size_t n = 0; n < in.size(); ++n)
+        ring_[(static_cast<std::size_t>(since_reset_) + n) % ring_.size()] = std::int64_t{in[n]} - zero_code(input_);
+}
+
 void BoardModel::run(std::span<const Code> in, std::vector<Code>& out) {
+    keep(in);
     const std::size_t before = out.size();
     out.resize(before + twin_->outputs_for(in.size()));
     twin_->process(in, std::span(out).subspan(before));
@@ -104,6 +126,7 @@ void BoardModel::run(std::span<const Code> in, std::vector<Code>& out) {
 }
 
 Code BoardModel::run_one(Code code) {
+    keep(std::span<const Code>(&code, 1));
     Code result = 0;
     twin_->process(std::span<const Code>(&code, 1), std::span<Code>(&result, 1));
     ++since_reset_;

@@ -32,6 +32,7 @@ private:
     void pass_often(std::span<const Code> in, std::vector<Code>& out);
     void pass_events(std::span<const Code> in, std::vector<Code>& out);
     void event(std::span<const Code> in, std::size_t& at, std::vector<Code>& out);
+    void keep(std::span<const Code> in);
     void run(std::span<const Code> in, std::vector<Code>& out);
     Code run_one(Code code);
     Code output_ago(const std::vector<Code>& out, std::int64_t samples) const;
@@ -39,8 +40,11 @@ private:
     Passage passage_;
     CodeMap input_map_, output_map_;
     ResetKind reset_kind_;
+    int reset_places_;
     FilterChain filter_;
-    std::int64_t since_reset_ = 0;  ///< samples that the filter got
+    std::int64_t since_reset_ = 0;    ///< samples that the filter got
+    std::vector<std::int64_t> ring_;  ///< what it got, by its number modulo the ring; where the reset asks for it
+    bool is_first_sample_ = false;    ///< the next one fills the state
     SampleFormat input_, output_;
     std::unique_ptr<Twin> twin_;
     std::int64_t index_ = 0;  ///< of the next sample of the case

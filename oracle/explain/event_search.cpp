@@ -27,11 +27,11 @@ constexpr EventKind event_kinds[] = {
     {PassageKind::output_lost, false, "an output is lost behind the filter",
      "the buffer between the filter and the line"},
     {PassageKind::output_doubled, false, "an output is sent twice", "the buffer between the filter and the line"},
-    {PassageKind::block_repeated, true, "a block in front of the filter is an older one",
+    {PassageKind::block_repeated, true, "a block in front of the filter is the one before it",
      "the half of the DMA buffer that is read while it is written; the cache in front of it"},
-    {PassageKind::output_block_repeated, true, "a block behind the filter is an older one",
+    {PassageKind::output_block_repeated, true, "a block behind the filter is the one before it",
      "the half of the buffer that is sent while it is written"},
-    {PassageKind::block_skipped, true, "a block does not reach the filter, outputs are older ones",
+    {PassageKind::block_skipped, true, "a block does not reach the filter, the outputs before it come again",
      "what happens when a block is not done before the next one comes"},
     {PassageKind::sample_replaced, false, "the lowest code comes in place of a sample",
      "a value that says \"no data\" and is taken for one"},
@@ -89,17 +89,20 @@ private:
                                                       : "each " + std::to_string(passage.period) + " samples from " +
                                                             std::to_string(passage.first) + " on")
                                : "at sample " + std::to_string(passage.first);
-        std::string length;
+        std::string length, happened = kind.what;
         if (kind.has_length) {
             const std::int64_t ago = passage.samples_ago();
             length = " (" + std::to_string(passage.length) + " samples" +
-                     (ago == passage.length ? "" : ", those of " + std::to_string(ago) + " before") + ")";
+                     (ago == passage.length ? "" : ", those " + std::to_string(ago) + " before") + ")";
+            const std::string next = "the one before it";
+            if (const auto at_end = happened.find(next); ago != passage.length && at_end != std::string::npos)
+                happened.replace(at_end, next.size(), "an older one");
         }
         // Two numbers of the size of the indices are paid for, and those of a block.
         const double price = 6.0 + std::log2(1.0 + static_cast<double>(passage.first)) +
                              (passage.period > 0 ? std::log2(1.0 + static_cast<double>(passage.period)) : 0.0) +
                              (kind.has_length ? 3.0 : 0.0) + (passage.samples_ago() == passage.length ? 0.0 : 3.0);
-        made.changes.push_back({Slot::passage, 0, when + ": " + kind.what + length, kind.look_at, price});
+        made.changes.push_back({Slot::passage, 0, when + ": " + happened + length, kind.look_at, price});
         return made;
     }
 

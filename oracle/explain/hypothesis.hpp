@@ -29,6 +29,7 @@ struct BoardDescription {
     CodeMap input = {}, output = {};
     Passage passage = {};
     ResetKind reset = ResetKind::whole;
+    int reset_places = 0;  ///< of ResetKind::ring_places
     bool operator==(const BoardDescription&) const = default;
 };
 

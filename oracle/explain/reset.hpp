@@ -25,18 +25,34 @@ enum class ResetKind {
     ring_begun_anew,
     /// The same half, and the place in the ring stays, and the sum.
     ring_start,
+    /// The first `places` of the ring are cleared and it is begun anew, with the sum as it was.
+    ring_places,
+    all_but_combs,        ///< of a CIC: the integrators and the count
+    all_but_integrators,  ///< of a CIC: the combs and the count
+    /// All is cleared, and then the first sample stands in each place of the state, as if it had always been there.
+    first_sample,
 };
 
 struct NamedReset {
     ResetKind kind = ResetKind::whole;
+    int places = 0;  ///< of ring_places
     std::string what;
     double price_bits = 0.0;
 };
 /// All but `whole` that the last stage of the chain can have.
 std::vector<NamedReset> resets_of(const FilterChain& chain);
 
-/// The words that such a reset leaves of `words`, `samples` after the reset before.
-std::vector<std::int64_t> left_by(ResetKind kind, const FilterChain& chain, std::vector<std::int64_t> words,
-                                  std::int64_t samples);
+/// What is known of a state when a reset comes.
+struct StateBefore {
+    std::vector<std::int64_t> words;
+    std::int64_t samples = 0;  ///< since the reset before
+    std::int64_t oldest = 0;   ///< in the ring, where the state does not have it because it is spent
+};
+/// The words that such a reset leaves; `cleared` is the state of a whole one.
+std::vector<std::int64_t> left_by(ResetKind kind, int places, const FilterChain& chain, StateBefore before,
+                                  const std::vector<std::int64_t>& cleared);
+
+/// How many past samples the ring of the only stage has; 0: it has none.
+std::size_t ring_length(const FilterChain& chain);
 
 }  // namespace halflsb

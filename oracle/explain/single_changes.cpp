@@ -58,8 +58,11 @@ void add_passages(const Hypothesis& from, std::vector<Hypothesis>& all) {
 void add_resets(const Hypothesis& from, std::vector<Hypothesis>& all) {
     if (from.board.reset != ResetKind::whole) return;
     for (const NamedReset& each : resets_of(from.board.filter)) {
+        // Second changes have enough to try.
+        if (each.kind == ResetKind::ring_places && !from.changes.empty()) continue;
         Hypothesis made = from;
         made.board.reset = each.kind;
+        made.board.reset_places = each.places;
         add_changed(from, std::move(made),
                     {Slot::reset, 0, each.what, "what a reset clears, and how much of it", each.price_bits}, all);
     }

@@ -89,7 +89,7 @@ void Board::send(const std::vector<Whole>& results) {
 }
 
 void Board::instant() {
-    const std::size_t width = cores_.size();
+    const std::ptrdiff_t width = std::ssize(cores_);
     if (fault_ == Fault::cleared_on_update && index_ == 300)
         for (auto& core : cores_) core->clear();
     if (fault_ == Fault::state_exchanged && index_ > 0 && index_ % block == 0)
@@ -99,7 +99,7 @@ void Board::instant() {
     std::vector<Whole> results;
     if (fault_ == Fault::block_skipped && index_ / block == 12) {
         // The output of the block before, once more.
-        results.assign(sent_.end() - block * std::ssize(cores_), sent_.end() - (block - 1) * std::ssize(cores_));
+        results.assign(sent_.end() - block * width, sent_.end() - (block - 1) * width);
         return send(results);
     }
     if (fault_ == Fault::each_second) {
@@ -116,8 +116,7 @@ void Board::instant() {
     compute(results);
     if (fault_ == Fault::output_lost && is_thousandth) return;
     if (fault_ == Fault::slot_again && index_ / block == 20)
-        results.assign(sent_.end() - 4 * block * std::ssize(cores_),
-                       sent_.end() - (4 * block - 1) * std::ssize(cores_));
+        results.assign(sent_.end() - 4 * block * width, sent_.end() - (4 * block - 1) * width);
     send(results);
     if (fault_ == Fault::output_doubled && is_thousandth) send(results);
     if (fault_ == Fault::sample_doubled && is_thousandth) {
@@ -125,7 +124,6 @@ void Board::instant() {
         compute(results);
         send(results);
     }
-    (void)width;
 }
 
 }  // namespace halflsb::mutants

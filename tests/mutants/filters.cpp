@@ -5,6 +5,7 @@
 #include <cstdlib>
 
 #include "tests/mutants/float_cores.hpp"
+#include "tests/mutants/tap_core.hpp"
 
 namespace halflsb::mutants {
 namespace {
@@ -21,6 +22,11 @@ std::string text_of(double number) {
 std::vector<double> as_written(std::vector<double> numbers) {
     for (double& number : numbers) number = std::strtod(text_of(number).c_str(), nullptr);
     return numbers;
+}
+
+Section written(const Section& section) {
+    const auto numbers = as_written({section.begin(), section.end()});
+    return {numbers[0], numbers[1], numbers[2], numbers[3], numbers[4]};
 }
 
 std::string list_of(const std::vector<double>& numbers) {
@@ -93,13 +99,7 @@ FilterUnderTest one_channel(std::string name, std::string plan, int word_bits, M
 
 FilterUnderTest low_pass(const std::string& name, double cutoff, SectionSetup setup, const std::string& format,
                          const std::string& arithmetic, double q = 0.70710678118654752, bool is_high = false) {
-    const auto design = [=](Fault fault) {
-        const Section exact = second_order(cutoff, q, is_high, fault);
-        const auto written = as_written({exact.begin(), exact.end()});
-        Section section{};
-        std::copy(written.begin(), written.end(), section.begin());
-        return section;
-    };
+    const auto design = [=](Fault fault) { return written(second_order(cutoff, q, is_high, fault)); };
     return one_channel(name, signal(format) + section_words(design(Fault::none), arithmetic), setup.word_bits,
                        [=](Fault fault) { return std::make_unique<Biquad>(design(fault), setup, fault); });
 }
@@ -122,10 +122,6 @@ void add_sections(std::vector<FilterUnderTest>& all) {
     all.push_back(low_pass("biquad 0.1, 32 bits", 0.1, {32, 30, 8}, "q31", wide));
     const Section first = second_order(0.1, 4.0, false, Fault::none),
                   second = second_order(0.02, 0.7, false, Fault::none);
-    const auto written = [](const Section& s) {
-        const auto numbers = as_written({s.begin(), s.end()});
-        return Section{numbers[0], numbers[1], numbers[2], numbers[3], numbers[4]};
-    };
     all.push_back(
         one_channel("two sections",
                     signal("i16") + section_words(first, usual_sections()) + "stage_format = \"i32\"\n" +
@@ -155,14 +151,11 @@ std::vector<FilterUnderTest> make_filters() {
                                               "shift_bits = 9\nphase_samples = 7\n[filter.arithmetic]\n"
                                               "state_bits = 32\nrounding = \"floor\"\noutput_overflow = \"saturate\"\n",
                               16, [](Fault fault) { return std::make_unique<Cic>(fault); }));
-    for (const bool is_pair : {true}) {
-        all.push_back({"two channels", signal("q15", 2) + average_words("half-up"), [is_pair](Fault fault) {
-                           std::vector<std::unique_ptr<Core>> cores;
-                           for (int c = 0; c < (is_pair ? 2 : 1); ++c)
-                               cores.push_back(std::make_unique<Average>(fault, true));
-                           return std::make_unique<Board>(std::move(cores), 16, fault);
-                       }});
-    }
+    all.push_back({"two channels", signal("q15", 2) + average_words("half-up"), [](Fault fault) {
+                       std::vector<std::unique_ptr<Core>> cores;
+                       for (int c = 0; c < 2; ++c) cores.push_back(std::make_unique<Average>(fault, true));
+                       return std::make_unique<Board>(std::move(cores), 16, fault);
+                   }});
     all.push_back(one_channel("average, float32",
                               signal("f32") +
                                   "[[filter]]\nkind = \"moving-average\"\npoints = 16\n[filter.arithmetic]\n"
@@ -184,13 +177,7 @@ std::vector<FilterUnderTest> make_filters() {
                               signal("f32") + section_words(slow,
                                                             "number = \"float32\"\nstructure = \"direct-1\"\n"
                                                             "multiply_add = \"separate\"\n"),
-                              32, [](Fault fault) {
-                                  const Section exact = second_order(0.001, 0.70710678118654752, false, Fault::none);
-                                  const auto written = as_written({exact.begin(), exact.end()});
-                                  Section section{};
-                                  std::copy(written.begin(), written.end(), section.begin());
-                                  return std::make_unique<FloatBiquad>(section, fault);
-                              }));
+                              32, [slow](Fault fault) { return std::make_unique<FloatBiquad>(written(slow), fault); }));
     return all;
 }
 

@@ -1,7 +1,7 @@
 // The same in float32: codes are the bits of a float, or whole numbers that are turned into one.
 #pragma once
 
-#include "tests/mutants/cores.hpp"
+#include "tests/mutants/section_cores.hpp"
 
 namespace halflsb::mutants {
 

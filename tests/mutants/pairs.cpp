@@ -119,7 +119,7 @@ void structures(List& list) {
     list.add("S06", Fault::half_reset, "a reset clears only the first 9 places of the ring", {"average"});
     list.add("S06", Fault::half_reset, "a reset clears only the first half of the ring and begins it anew", taps);
     list.add("S06", Fault::half_reset, "a reset clears only the past inputs of each section", sections);
-    list.add("S06", Fault::half_reset, "a reset clears only the first half of the state", {"CIC decimator"});
+    list.add("S06", Fault::half_reset, "a reset clears the integrators, the combs stay", {"CIC decimator"});
     list.add("S07", Fault::no_reset, "a reset leaves the state as it was", all_kinds);
     list.add("S08", Fault::garbage_at_power_up, "bytes of 0x5a in the state at power-up", steady);
     list.add("S09", Fault::first_sample, "a start as if the first sample had always been there", steady);
