@@ -13,7 +13,11 @@ namespace halflsb {
 
 namespace {
 
-constexpr double bits_above = 64.0;    // 6 bits: the noise must spread over that many of the steps kept, or had
+constexpr double bits_above = 64.0;  // 6 bits: the noise must spread over that many of the steps kept, or had
+/// Remainders are independent from step to step where what is dropped moves by more than a step between two samples
+/// (rms). A slow pole in a direct form moves it by less: its coefficients are nearly whole, and the loop has a dead
+/// band.
+constexpr double least_move_steps = 1.0;
 constexpr double one_sign = 1e-9;      // of sum |h|: a path with less of the other sign has but one
 constexpr std::size_t most_lags = 64;  // of products whose errors go together; beyond them |r[l]| <= r[0]
 
@@ -39,6 +43,18 @@ struct KnownPoint {
     double coarsest_step = 0.0;
     /// Of the number that is shortened, for white noise of rms 1 at the input; looked up once it is asked for.
     std::optional<double> level_per_rms;
+
+    /// Likewise, of what RoundingPoint::remainder leads to.
+    std::optional<double> move_per_rms;
+
+    bool moves(double input_rms) {
+        if (point.remainder.empty()) return true;
+        if (!move_per_rms) {
+            const bool is_known = is_linear(point.remainder) && !changes_rate(point.remainder);
+            move_per_rms = is_known ? std::sqrt(noise_power_gain(point.remainder)) : 0.0;
+        }
+        return input_rms * *move_per_rms >= least_move_steps * point.step;
+    }
 
     double level(double input_rms) {
         if (!level_per_rms) {
@@ -66,8 +82,9 @@ public:
         bound_.worst_rms += any;
         const bool has_both_signs = std::min(sums.positive, -sums.negative) > one_sign * sums.l1();
         clips_one_way_ = clips_one_way_ && !has_both_signs;
-        term.is_statistical =
-            use_.noise_like && sums.is_one_response && known.level(use_.input_rms) >= bits_above * known.coarsest_step;
+        term.is_statistical = use_.noise_like && sums.is_one_response &&
+                              known.level(use_.input_rms) >= bits_above * known.coarsest_step &&
+                              known.moves(use_.input_rms);
         if (term.is_statistical) {
             add_noise(point, sums, term);
         } else {
@@ -215,6 +232,7 @@ private:
             known.points.push_back({point,
                                     path_sums(path_of(point, exact_.stages), samples, lags, has_past),
                                     std::max({point.step, point.coarsest_step, coarsest_word_before(point.stage)}),
+                                    {},
                                     {}});
         };
         for (const RoundingPoint& point : points_) add(point);

@@ -32,6 +32,9 @@ struct RoundingPoint {
     bool saves_fraction = false;  ///< what is dropped goes into the next sum: the path has a factor 1 - z^-1
     FilterChain from_input = {};  ///< from the chain's input to the number that is shortened, but for:
     double factor = 1.0;          ///< of a product its smallest coefficient
+    /// From the chain's input to how far the part that is dropped moves from one sample to the next, whole steps aside.
+    /// Empty: nothing says, and the number that is shortened stands for it.
+    FilterChain remainder = {};
     FilterChain inside = {};      ///< what the error passes before it comes out at the node: registers of a CIC
 };
 

@@ -35,6 +35,26 @@ FilterStage signal_of_state(const SectionCoefficients& s, std::size_t k, std::si
     return stage;
 }
 
+/// Of a direct form whose sum keeps `step_bits` of fraction: what the sum moves by from one sample to the next, without
+/// whole steps. `fed_back` is the word that a1, a2 ... multiply; what is fed back is B / A of the section's input, or 1
+/// / A
+/// (`is_state`), where the forward products come later.
+FilterStage moving_sum(const SectionCoefficients& s, const Word& in, const Word& fed_back, int step_bits,
+                       bool is_state) {
+    std::vector<double> a{1.0};
+    a.insert(a.end(), s.feedback.begin(), s.feedback.end());
+    const std::vector<double> b = is_state ? std::vector<double>{1.0} : s.forward;
+    std::vector<double> numerator(b.size() + a.size(), 0.0);
+    for (std::size_t j = 0; j < b.size() && !is_state; ++j)
+        for (std::size_t k = 0; k < a.size(); ++k) numerator[j + k] += moving_part(b[j], in, step_bits) * a[k];
+    for (std::size_t k = 1; k < a.size(); ++k)
+        for (std::size_t j = 0; j < b.size(); ++j) numerator[j + k] -= moving_part(a[k], fed_back, step_bits) * b[j];
+    for (std::size_t k = numerator.size() - 1; k > 0; --k) numerator[k] -= numerator[k - 1];
+    FilterStage stage;
+    stage.design = Recursion{std::move(numerator), std::move(a)};
+    return stage;
+}
+
 class SectionPoints {
 public:
     explicit SectionPoints(StageSums& stage_sums) : here_(stage_sums) {}
@@ -48,7 +68,7 @@ public:
             of_transposed(s, j);
         } else {
             if (here_.stage.structure == Structure::direct_1) of_direct_1(s, j);
-            if (here_.stage.structure == Structure::difference) of_difference(s.forward.front());
+            if (here_.stage.structure == Structure::difference) of_difference(s);
             if (here_.stage.structure == Structure::leak) of_leak(s.forward.front());
             stays_wide = here_.stage.rounding_at == RoundingAt::output && !is_last;
             if (!stays_wide) here_.add_output(j);
@@ -63,6 +83,13 @@ public:
     }
 
 private:
+    FilterChain remainder_of(const SectionCoefficients& s, const SumTarget& target, const Word& fed_back,
+                             bool is_state) const {
+        FilterChain path = target.from_input_of_terms;
+        path.push_back(moving_sum(s, here_.in, fed_back, target.fraction_bits, is_state));
+        return path;
+    }
+
     std::vector<Term> terms_of(const std::vector<double>& forward, const Word& word) const {
         std::vector<Term> terms;
         for (const double b : forward) terms.push_back(here_.term(b, word));
@@ -73,6 +100,7 @@ private:
         SumTarget target = here_.at_section("sum", j, Place::loop);
         target.saves_fraction = here_.stage.fraction_saving;
         target.fraction_bits = here_.stage.state.fraction_bits;
+        target.remainder = remainder_of(s, target, here_.stage.state, false);
         std::vector<Term> terms = terms_of(s.forward, here_.in);
         for (const double a : s.feedback) terms.push_back(here_.feedback(a, here_.stage.state));
         here_.sums.add_sum(std::move(terms), target);
@@ -84,6 +112,7 @@ private:
         first.saves_fraction = here_.stage.fraction_saving;
         first.fraction_bits = state.fraction_bits;
         first.from_input = first.from_input_of_feedback = path_to_state(here_.exact.stages, first.node);
+        first.remainder = remainder_of(s, first, state, true);
         std::vector<Term> terms{here_.whole(here_.in)};
         for (const double a : s.feedback) terms.push_back(here_.feedback(a, state));
         here_.sums.add_sum(std::move(terms), first);
@@ -105,6 +134,7 @@ private:
             return path;
         };
         output.from_input_of_state = to_state(1);
+        output.remainder = remainder_of(s, output, here_.stage.out.word, false);
         here_.sums.add_sum({here_.whole(here_.stage.state), here_.term(s.forward.front(), here_.in)}, output);
         for (std::size_t k = 1; k <= order; ++k) {
             SumTarget state = here_.at_section("state " + std::to_string(k), j, Place::loop);
@@ -119,12 +149,13 @@ private:
         }
     }
 
-    void of_difference(double k) {
+    void of_difference(const SectionCoefficients& s) {
         const Word difference{wide_bits, std::max(here_.in.fraction_bits, here_.stage.state.fraction_bits)};
         SumTarget target = here_.at_section("product", 0, Place::loop);
         target.fraction_bits = here_.stage.state.fraction_bits;
         target.multiplies_input = false;
-        here_.sums.add_sum({here_.term(k, difference)}, target);
+        target.remainder = remainder_of(s, target, here_.stage.state, false);
+        here_.sums.add_sum({here_.term(s.forward.front(), difference)}, target);
     }
 
     void of_leak(double k) {

@@ -28,6 +28,14 @@ RoundedNumbers designed_numbers(const std::vector<Term>& terms, int target_bits)
 
 int trailing_zeros(std::int64_t stored) { return std::countr_zero(static_cast<std::uint64_t>(stored)); }
 
+/// The number at the end of the path times `part`, less what it was a sample before.
+FilterChain moved(FilterChain path, double part) {
+    FilterStage difference;
+    difference.design = Fir{{part, -part}};
+    path.push_back(std::move(difference));
+    return path;
+}
+
 double power_of_two(int exponent) { return std::ldexp(1.0, exponent); }
 
 }  // namespace
@@ -36,6 +44,11 @@ int fraction_bits_of(double c) {
     int exponent = 0;
     const auto mantissa = static_cast<std::int64_t>(std::ldexp(std::frexp(c, &exponent), 53));
     return 53 - exponent - std::countr_zero(static_cast<std::uint64_t>(mantissa));
+}
+
+double moving_part(double coefficient, const Word& word, int step_bits) {
+    const double whole = std::ldexp(1.0, word.fraction_bits - step_bits);
+    return coefficient - whole * std::round(coefficient / whole);
 }
 
 std::optional<Rounding> SumPoints::rounding_of(const SumTarget& target) const {
@@ -64,6 +77,7 @@ void SumPoints::add_shortening(const SumTarget& target, RoundedNumbers numbers) 
     point.error = rounding_error(rounding_of(target), numbers).times(point.step);
     point.variance_each = point.error.variance;
     point.saves_fraction = target.saves_fraction;
+    point.remainder = target.remainder;
     points.push_back(std::move(point));
 }
 
@@ -77,6 +91,7 @@ void SumPoints::add_product(const Term& product, const SumTarget& target, double
     point.from_input = target.from_input_of_terms;
     point.factor = std::fabs(product.coefficient);
     point.is_of_input = target.multiplies_input;
+    point.remainder = moved(point.from_input, moving_part(product.coefficient, product.word, target.fraction_bits));
     points.push_back(std::move(point));
 }
 
@@ -115,6 +130,7 @@ void SumPoints::add_products(const std::vector<Term>& terms, const SumTarget& ta
                        : of == Term::Of::state  ? target.from_input_of_state
                                                 : target.from_input_of_terms;
     const bool any = stage_.rounding_at == RoundingAt::product && !is_known();
+    double moving = unlimited;
     for (const Term& t : terms) {
         if (t.of != of || (!any && !stage_.coefficients_are_said)) continue;
         Term product = t;
@@ -129,7 +145,9 @@ void SumPoints::add_products(const std::vector<Term>& terms, const SumTarget& ta
         point.parts = std::max(point.parts, numbers.parts);
         point.variance_each = std::max(point.variance_each, error.variance);
         point.factor = std::min(point.factor, std::fabs(t.coefficient));
+        moving = std::min(moving, std::fabs(moving_part(t.coefficient, t.word, accumulator)));
     }
+    if (of == Term::Of::feedback && point.count > 0) point.remainder = moved(point.from_input, moving);
     if (point.count > 0) points.push_back(std::move(point));
 }
 

@@ -8,6 +8,10 @@ namespace halflsb {
 /// Of a double other than 0: c is a multiple of 2^-n for the least such n.
 int fraction_bits_of(double c);
 
+/// What of a coefficient moves the part that is dropped: without the whole steps, of `step_bits` of fraction, that one
+/// step of the word gives.
+double moving_part(double coefficient, const Word& word, int step_bits);
+
 /// A product of a sum: stored coefficient times words.
 struct Term {
     double coefficient = 1.0;  ///< as a value
@@ -34,6 +38,7 @@ struct SumTarget {
     FilterChain from_input_of_terms = {};  ///< to what its forward products multiply
     FilterChain from_input_of_state = {};  ///< to the state that it adds
     FilterChain from_input_of_feedback = {};  ///< to what is fed back
+    FilterChain remainder = {};               ///< as RoundingPoint has it
 };
 
 class SumPoints {
