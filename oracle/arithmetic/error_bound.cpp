@@ -14,10 +14,10 @@ namespace halflsb {
 namespace {
 
 constexpr double bits_above = 64.0;  // 6 bits: the noise must spread over that many of the steps kept, or had
-/// Remainders are independent from step to step where what is dropped moves by more than a step between two samples
-/// (rms). A slow pole in a direct form moves it by less: its coefficients are nearly whole, and the loop has a dead
-/// band.
-constexpr double least_move_steps = 1.0;
+/// A remainder is independent of the one before where what is dropped moves by half a step between two samples (rms): of
+/// a normal move they correlate by exp(-2 pi^2 / 4) = 0.7 %. A slow pole in a direct form moves it by less: its
+/// coefficients are nearly whole, and the loop has a dead band.
+constexpr double least_move_steps = 0.5;
 constexpr double one_sign = 1e-9;      // of sum |h|: a path with less of the other sign has but one
 constexpr std::size_t most_lags = 64;  // of products whose errors go together; beyond them |r[l]| <= r[0]
 

@@ -11,7 +11,8 @@ AlignedPass::AlignedPass(const JudgedChannel& channel, int lag_samples)
     : signal_(channel.plan.signal),
       lag_(lag_samples),
       first_judged_(first_judged_sample(channel.plan, channel.the_case)),
-      to_skip_(lag_samples < 0 ? static_cast<std::size_t>(-lag_samples) : 0) {
+      to_skip_(lag_samples < 0 ? static_cast<std::size_t>(-lag_samples) : 0),
+      silence_(lag_samples > 0 ? static_cast<std::size_t>(lag_samples) : 0) {
     if (first_judged_ > 0 && lag_samples > 0) first_judged_ += lag_samples;
     JudgedChannel at_lag = channel;
     at_lag.lag_samples = lag_samples;
@@ -19,16 +20,19 @@ AlignedPass::AlignedPass(const JudgedChannel& channel, int lag_samples)
         if (auto judge = make_judge(rule, at_lag)) judges_.push_back({&rule, std::move(judge)});
     }
     if (channel.wants_plots) trace_.emplace(channel.plan, channel.the_case, channel.channel, lag_samples);
-    if (lag_samples > 0) {
-        waiting_.append_silence(static_cast<std::size_t>(lag_samples), signal_,
-                                wanted_references(channel.the_case, channel.channel));
-    }
 }
 
 void AlignedPass::add(const ReferenceBlock& reference, std::span<const Code> response) {
     if (lag_ == 0) {
         measure_judged(reference, response);
         return;
+    }
+    // Of the references that there are: a wanted twin may have no description.
+    if (silence_ > 0 && !reference.codes.empty()) {
+        waiting_.append_silence(
+            silence_, signal_,
+            {.design = !reference.design.empty(), .twin = !reference.twin.empty(), .rails = !reference.exempt.empty()});
+        silence_ = 0;
     }
     const auto skip = std::min(to_skip_, reference.codes.size());
     to_skip_ -= skip;

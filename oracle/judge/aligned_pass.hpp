@@ -61,7 +61,7 @@ private:
     std::vector<Judged> judges_;
     std::optional<TimeTrace> trace_;
     // What waits for its partner.
-    std::size_t to_skip_;
+    std::size_t to_skip_, silence_;
     WaitingReference waiting_;
     std::vector<Code> response_;
     std::vector<double> response_values_;

@@ -184,6 +184,20 @@ TEST_CASE("headroom: a running sum that is as narrow as a sample wraps", "[judge
     CHECK(*verdict.figures.at(1).value > 50.0);
 }
 
+// The response of such a sum may fit another lag best, and a plan that says no arithmetic has no twin to wait for it.
+TEST_CASE("headroom: at another lag it is judged without a twin, too", "[judge]") {
+    Plan plan = test::moving_average_plan();
+    plan.filter[0].arithmetic = {};
+    const Case the_case =
+        test::a_case(plan, "noise", values({{"level_ratio", 1.0}, {"length_samples", std::int64_t{2048}}}),
+                     {test::rule(plan, "headroom", {})});
+    std::vector<Code> response = test::right_response(plan, the_case);
+    // As late as is looked for.
+    response.insert(response.begin(), 64, 0);
+    response.resize(2048);
+    CHECK(judge(plan, the_case, response).rules.at(0).verdict != Verdict::pass);
+}
+
 TEST_CASE("headroom: another fault is left to the rules that say what it is", "[judge]") {
     const Plan plan = loud_plan();
     const Case the_case = hardest(plan);
