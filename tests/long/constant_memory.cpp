@@ -12,44 +12,23 @@
 #include <cstdint>
 #include <cstdio>
 #include <cstdlib>
-#include <fstream>
 #include <string>
 #include <utility>
 #include <vector>
 
 #include "oracle/judge/case_judge.hpp"
+#include "tests/long/judged_here.hpp"
 #include "tests/support/accepted.hpp"
 
 using namespace halflsb;
+using namespace halflsb::test;
 
 namespace {
 
 constexpr std::int64_t first_look_samples = 1'000'000;
-constexpr std::size_t points = 16, block_samples = 256, channels = 2;
+constexpr std::size_t block_samples = 256, channels = 2;
 constexpr std::int64_t kept_samples = 1000, stretches = 256;
 constexpr double most_growth_mib = 4.0;
-
-[[noreturn]] void give_up(const std::string& why) {
-    std::fprintf(stderr, "constant_memory: %s\n", why.c_str());
-    std::exit(1);
-}
-
-/// Of this program's own memory. Not getrusage(): its peak is that of the process before exec, too, and a
-/// large parent would hide growth.
-double peak_mib() {
-    std::ifstream status("/proc/self/status");
-    for (std::string word; status >> word;) {
-        double kib = 0.0;
-        if (word == "VmHWM:" && status >> kib) return kib / 1024.0;
-    }
-    give_up("/proc/self/status tells no peak");
-}
-
-template <class T>
-T value_of(Outcome<T> outcome) {
-    if (!outcome) give_up(to_text(outcome.error()));
-    return std::move(outcome).value();
-}
 
 Plan a_plan() {
     Plan plan;
@@ -58,7 +37,7 @@ Plan a_plan() {
     plan.signal.channels = static_cast<int>(channels);
     plan.signal.input = plan.signal.output = *sample_format("q15");
     FilterStage stage;
-    stage.design = MovingAverage{static_cast<int>(points)};
+    stage.design = MovingAverage{static_cast<int>(averaged_points)};
     plan.filter.push_back(stage);
     return plan;
 }
@@ -76,23 +55,6 @@ Case a_case(const Plan& plan, std::int64_t samples) {
     made.rules = {{error, {}}, {LatencyRule{0, false}, {}}, {response, {}}};
     return made;
 }
-
-/// The mean of the last 16 codes, rounded half up, as firmware would: a sum that runs.
-class Board {
-public:
-    Code step(Code in) {
-        sum_ += in - line_[at_];
-        line_[at_] = in;
-        at_ = (at_ + 1) % points;
-        const std::int64_t rounded = sum_ + static_cast<std::int64_t>(points / 2);
-        return static_cast<Code>(rounded >= 0 ? rounded / 16 : -((-rounded + 15) / 16));
-    }
-
-private:
-    std::array<std::int64_t, points> line_{};
-    std::size_t at_ = 0;
-    std::int64_t sum_ = 0;
-};
 
 /// What the board returns, block by block from the start.
 class Responses {
@@ -116,7 +78,7 @@ private:
     const Case& case_;
     std::int64_t samples_;
     std::int64_t first_ = 0;
-    std::array<Board, channels> boards_;
+    std::array<MovingAverageBoard, channels> boards_;
 };
 
 /// The baseline of the right responses, hashed as they come.
