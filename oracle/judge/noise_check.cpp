@@ -26,7 +26,7 @@ std::optional<double> white_noise_gain(const Plan& plan, const Case& the_case, i
 }
 
 std::int64_t noise_samples_needed(const Plan& plan, const Case& the_case, int channel) {
-    constexpr double times = 100.0;
+    constexpr double times = 200.0;
     double remembered = static_cast<double>(tail_samples(plan, the_case, channel).value_or(0) + 1);
     const FilterChain chain = from_rest(chain_of(plan, the_case, channel));
     if (is_linear(chain) && !CaseRates(plan, the_case).changes()) {

@@ -16,7 +16,7 @@ namespace halflsb {
 
 /// sum h^2 of a linear channel of one rate, else none.
 std::optional<double> white_noise_gain(const Plan& plan, const Case& the_case, int channel);
-/// How many samples of the response a noise rule wants behind the filter's settling: 100 times what the filter
+/// How many samples of the response a noise rule wants behind the filter's settling: 200 times what the filter
 /// remembers, (sum |h|)^2 / sum h^2 (M of a moving average, two time constants of a one-pole), or else its tail.
 std::int64_t noise_samples_needed(const Plan& plan, const Case& the_case, int channel);
 

@@ -30,6 +30,14 @@ struct Moments {
 };
 
 template <std::size_t Sums>
+std::vector<double> means_of(const DoublingBlocks<Sums>& blocks, const std::vector<double>& lengths,
+                             std::size_t which) {
+    std::vector<double> means(lengths.size());
+    for (std::size_t b = 0; b < means.size(); ++b) means[b] = blocks.sum(b, which) / lengths[b];
+    return means;
+}
+
+template <std::size_t Sums>
 NoiseFault fault_of(const DoublingBlocks<Sums>& blocks) {
     for (std::size_t which = 0; which < Sums; ++which) {
         if (!std::isfinite(blocks.sum(which))) return NoiseFault::not_finite;
@@ -60,10 +68,15 @@ void NoiseRatioMeasure::add(std::span<const double> stimulus, std::span<const do
 NoiseRatioAnswer NoiseRatioMeasure::value() const {
     const NoiseFault fault = fault_of(blocks_);
     if (fault != NoiseFault::none) return {std::nullopt, fault};
-    const Moments<4> x(blocks_, 0, 2), y(blocks_, 1, 3);
+    Moments<4> x(blocks_, 0, 2), y(blocks_, 1, 3);
     if (!(x.power > 0.0)) return {std::nullopt, NoiseFault::silent_stimulus};
-    const double ratio = y.power / x.power;
     const auto lengths = lengths_of(blocks_);
+    const auto x_means = series_variance(means_of(blocks_, lengths, 0), lengths, FittedCourse::constant),
+               y_means = series_variance(means_of(blocks_, lengths, 1), lengths, FittedCourse::constant);
+    if (!x_means || !y_means) return {std::nullopt, NoiseFault::too_short};
+    x.power += x_means->variance / static_cast<double>(blocks_.samples());
+    y.power += y_means->variance / static_cast<double>(blocks_.samples());
+    const double ratio = y.power / x.power;
     std::vector<double> d(lengths.size());
     for (std::size_t b = 0; b < d.size(); ++b) {
         d[b] = (y.squares_in(blocks_, b, 1, 3) - ratio * x.squares_in(blocks_, b, 0, 2)) / (x.power * lengths[b]);
@@ -99,20 +112,17 @@ ExcessNoiseAnswer ExcessNoiseMeasure::value() const {
     if (fault != NoiseFault::none) return {std::nullopt, fault};
     const Moments<2> e(blocks_, 0, 1);
     const auto lengths = lengths_of(blocks_);
-    std::vector<double> squares(lengths.size()), means(lengths.size());
-    for (std::size_t b = 0; b < lengths.size(); ++b) {
-        squares[b] = e.squares_in(blocks_, b, 0, 1) / lengths[b];
-        means[b] = blocks_.sum(b, 0) / lengths[b];
-    }
+    std::vector<double> squares(lengths.size());
+    for (std::size_t b = 0; b < lengths.size(); ++b) squares[b] = e.squares_in(blocks_, b, 0, 1) / lengths[b];
     const auto of_power = series_variance(squares, lengths, FittedCourse::constant);
-    const auto of_bias = series_variance(means, lengths, FittedCourse::constant);
+    const auto of_bias = series_variance(means_of(blocks_, lengths, 0), lengths, FittedCourse::constant);
     if (!of_power || !of_bias) return {std::nullopt, NoiseFault::too_short};
     const auto samples = static_cast<double>(blocks_.samples());
 
     ExcessNoiseFigures figures;
     figures.samples = blocks_.samples();
     figures.degrees = of_power->degrees;
-    figures.power = {e.power, std::sqrt(of_power->variance / samples)};
+    figures.power = {e.power + of_bias->variance / samples, std::sqrt(of_power->variance / samples)};
     figures.bias = {first_ + e.mean, std::sqrt(of_bias->variance / samples)};
     return {figures, NoiseFault::none};
 }

@@ -143,13 +143,13 @@ TEST_CASE("noise: a stimulus that is not white, or too short, is refused with wh
     CHECK(sine[0].problem ==
           "case \"a case\" cannot answer a noise rule with shape = \"sine\": the gain is that of white noise");
     CHECK(sine[0].remedy == "use shape = \"noise\"");
-    CHECK(refusals(plan, noise_case(plan, values({{"max_gain_db", -12.0}}), 1615)).empty());
-    const auto brief = refusals(plan, noise_case(plan, values({{"max_gain_db", -12.0}}), 1614));
+    CHECK(refusals(plan, noise_case(plan, values({{"max_gain_db", -12.0}}), 3215)).empty());
+    const auto brief = refusals(plan, noise_case(plan, values({{"max_gain_db", -12.0}}), 3214));
     REQUIRE(brief.size() == 1);
     CHECK(brief[0].problem ==
-          "case \"a case\" is too short for a noise power: 1599 samples are left once the filter has settled, and 1600 "
+          "case \"a case\" is too short for a noise power: 3199 samples are left once the filter has settled, and 3200 "
           "are needed");
-    CHECK(brief[0].remedy == "give it at least 1615 samples");
+    CHECK(brief[0].remedy == "give it at least 3215 samples");
 }
 
 TEST_CASE("noise: a filter that has no gain on paper is held against its stimulus", "[judge]") {

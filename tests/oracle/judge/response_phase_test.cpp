@@ -169,8 +169,8 @@ TEST_CASE("phase: intervals of phase and group delay hold as often as they say",
         wrong_phase += decisions.phase_verdict() == Verdict::fail;
         wrong_delay += decisions.verdict() == Verdict::fail && decisions.phase_verdict() != Verdict::fail;
     }
-    CHECK(halflsb::testing::is_binomial(delay_held, boards, 0.95));
-    CHECK(halflsb::testing::is_binomial(phase_held, boards, 0.95));
+    CHECK(halflsb::testing::holds_95_percent(delay_held, boards));
+    CHECK(halflsb::testing::holds_95_percent(phase_held, boards));
     // alpha of all figures together is 1e-2; 2000 boards: 20 in the mean, above 42 with a chance below 1e-5.
     CHECK(wrong_phase + wrong_delay <= std::max(42, boards / 48));
 }

@@ -103,7 +103,7 @@ TEST_CASE("drift: an error that stands still has no slope and no doubt", "[measu
 
 TEST_CASE("drift: white errors are as sure as least squares says", "[measure]") {
     // Of single samples var slope = 12 s^2 / (N (N^2 - 1)); means of 128 and more blocks lose less than 1 / 128^2.
-    const int rounds = test::rounds_of(1000);
+    const int rounds = test::rounds_of(2000);
     const double n = 1000.0;
     Gaussian noise(505);
     double said = 0.0, was = 0.0, ends = 0.0, intercepts = 0.0;
@@ -118,7 +118,7 @@ TEST_CASE("drift: white errors are as sure as least squares says", "[measure]") 
         ends += std::pow(f.last_less_first.standard_uncertainty, 2) / rounds;
         intercepts += std::pow(f.intercept.standard_uncertainty, 2) / rounds;
     }
-    for (const int held : {slope, intercept, end}) CHECK(is_binomial(held, rounds, 0.95));
+    for (const int held : {slope, intercept, end}) CHECK(holds_95_percent(held, rounds));
     // Each variance has 32 degrees of freedom, the true squares one each: 4 deviations.
     const double closed = 12.0 * 0.01 / (n * (n * n - 1.0));
     CHECK(said == Approx(closed).epsilon(4.0 * std::sqrt(2.0 / 32.0 / rounds)));
@@ -132,7 +132,7 @@ TEST_CASE("drift: correlated errors are held as often as promised", "[measure]")
     // 0.9 from sample to sample: 300 / (1 - 0.9) is the shortest run that is said to be long enough; taken for
     // independent, such errors would be held in 35 % of all rounds.
     const std::size_t length = GENERATE(3000u, 6400u);
-    const int rounds = test::rounds_of(500);
+    const int rounds = test::rounds_of(2000);
     int slope = 0, change = 0;
     Correlated noise(0.9, 606);
     for (int round = 0; round < rounds; ++round) {
@@ -140,12 +140,12 @@ TEST_CASE("drift: correlated errors are held as often as promised", "[measure]")
         slope += is_held(f.slope_per_sample, f.degrees, 2e-5);
         change += is_held(f.change_over_run, f.degrees, 2e-5 * static_cast<double>(length - 1));
     }
-    CHECK(is_binomial(slope, rounds, 0.95));
+    CHECK(holds_95_percent(slope, rounds));
     CHECK(change == slope);
 }
 
 TEST_CASE("drift: rounded ramps are held, with noise as often as promised, without at least as often", "[measure]") {
-    const int rounds = test::rounds_of(500);
+    const int rounds = test::rounds_of(2000);
     Random random(707);
     Gaussian noise(708);
     int with_noise = 0, bare = 0, steep = 0;
@@ -162,7 +162,7 @@ TEST_CASE("drift: rounded ramps are held, with noise as often as promised, witho
         ++steep;
         bare += is_held(stairs.slope_per_sample, stairs.degrees, slope);
     }
-    CHECK(is_binomial(with_noise, rounds, 0.95));
+    CHECK(holds_95_percent(with_noise, rounds));
     CHECK(steep > rounds / 2);
     CHECK(bare >= 0.95 * steep);
 }

@@ -84,6 +84,6 @@ TEST_CASE("fractional delay: the interval of 95 % holds the truth as often on 20
             REQUIRE(delay);
             held += testing::holds(delay->samples, delay->standard_uncertainty, is_late ? 0.5 : 0.0);
         }
-        CHECK(testing::is_binomial(held, boards, 0.95));
+        CHECK(testing::holds_95_percent(held, boards));
     }
 }

@@ -65,16 +65,10 @@ void count(Held& held, const ResponseSums& sums, std::size_t point) {
     held.wrongly_above += std::abs(truth) < gain_surely_above(design, estimate, 0.05);
 }
 
-// How far from 95 % a count may be: 1.5 % of 2000, three of its binomial deviations of 0.49 %. Of fewer boards (under
-// the sanitizers), four deviations of so few besides.
-double band_of(int boards) {
-    return 0.015 + (boards >= 2000 ? 0.0 : 4.0 * std::sqrt(0.95 * 0.05 / static_cast<double>(boards)));
-}
-
 void check(const Held& held, int boards) {
-    const double band = band_of(boards);
-    CHECK(held.gain / static_cast<double>(boards) == Approx(0.95).margin(band));
-    CHECK(held.phase / static_cast<double>(boards) == Approx(0.95).margin(band));
+    const double band = band_of_95_percent(boards);
+    CHECK(holds_95_percent(held.gain, boards));
+    CHECK(holds_95_percent(held.phase, boards));
     CHECK(held.wrongly_below / static_cast<double>(boards) < 0.05 + band);
     CHECK(held.wrongly_above / static_cast<double>(boards) < 0.05 + band);
 }
@@ -172,8 +166,7 @@ TEST_CASE("response estimate: an offset of the board stands at 0 alone, and wide
         const Interval gain = gain_interval(1.0, estimate, 0.95);
         held += gain.low <= 1.0 && 1.0 <= gain.high;
     }
-    CHECK(held > 0.935 * boards - (boards < 2000 ? 0.05 * boards : 0.0));
-    CHECK(held < 0.985 * boards + (boards < 2000 ? 0.05 * boards : 0.0));
+    CHECK(holds_95_percent(held, boards));
 }
 
 TEST_CASE("response estimate: where the stimulus has no power, nothing is said", "[measure]") {
@@ -221,7 +214,7 @@ TEST_CASE("response estimate: what the window smooths is taken off again", "[mea
 }
 
 TEST_CASE("response estimate: of a stimulus that passes once, the spread is between neighbours", "[measure]") {
-    const int boards = test::rounds_of(1000);
+    const int boards = test::rounds_of(2000);
     Gaussian normal(124);
     int held = 0, counted = 0;
     const std::size_t length = 8192;
@@ -248,5 +241,5 @@ TEST_CASE("response estimate: of a stimulus that passes once, the spread is betw
         }
     }
     // A difference that bends within the neighbours widens the interval, and never narrows it.
-    CHECK(held / static_cast<double>(counted) > 0.95 - band_of(counted));
+    CHECK(held / static_cast<double>(counted) > 0.95 - band_of_95_percent(counted));
 }

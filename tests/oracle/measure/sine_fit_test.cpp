@@ -136,7 +136,7 @@ TEST_CASE("sine fit: 95 % intervals hold the true values", "[oracle]") {
         offset += holds(fit->offset.value, fit->offset.standard_uncertainty, -0.2);
         frequency += holds(fit->cycles_per_sample.value, fit->cycles_per_sample.standard_uncertainty, 0.0713);
     }
-    for (const int held : {amplitude, phase, offset, frequency}) CHECK(is_binomial(held, rounds, 0.95));
+    for (const int held : {amplitude, phase, offset, frequency}) CHECK(holds_95_percent(held, rounds));
 }
 
 TEST_CASE("sine fit: what cannot be fitted has a reason", "[oracle]") {

@@ -118,7 +118,7 @@ TEST_CASE("transition: under noise the figures hold the truth as often as said",
     for (const int held : {low, mid, high, duration, settling}) {
         CHECK(held >= 0.95 * n - 3.7 * std::sqrt(0.95 * 0.05 * n));
     }
-    CHECK(is_binomial(final_value, rounds, 0.95));
+    CHECK(holds_95_percent(final_value, rounds));
     CHECK(said > was);
     CHECK(said < 2.0 * was * (1.0 + 3.0 * std::sqrt(2.0 / n)));
 }
