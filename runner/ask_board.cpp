@@ -109,11 +109,16 @@ private:
         return free;
     }
 
-    Outcome<Plan> read(const std::string& text, const std::string& path) const {
+    /// Files that the run's plan names lie in its folder.
+    PlanOptions plan_options() const {
         const RecordedRun& record = request_.run.own.record;
         PlanOptions options;
         options.root = files_.exists(record.plan_root()) ? record.plan_root() : record.folder;
-        auto plan = read_plan_text(text, path, files_, options);
+        return options;
+    }
+
+    Outcome<Plan> read(const std::string& text, const std::string& path) const {
+        auto plan = read_plan_text(text, path, files_, plan_options());
         if (auto* problems = std::get_if<ReadProblems>(&plan))
             return Error{ErrorKind::defect, path, problems->texts.front(), ""};
         return std::get<Plan>(std::move(plan));
@@ -126,10 +131,7 @@ private:
             cases.push_back({name_of_question(i, questions[i]), "tells apart what the captures of the run leave open",
                              questions[i].words});
         }
-        PlanOptions options;
-        options.root = files_.exists(record.plan_root()) ? record.plan_root() : record.folder;
-        options.seed = record.run.seed;
-        auto text = question_plan(record.plan_path(), files_, options, cases, has_twin(), first_flushes);
+        auto text = question_plan(record.plan_path(), files_, plan_options(), cases, has_twin(), first_flushes);
         if (auto* problems = std::get_if<ReadProblems>(&text))
             return Error{ErrorKind::defect, record.plan_path(), problems->texts.front(), ""};
         return std::get<std::string>(std::move(text));
