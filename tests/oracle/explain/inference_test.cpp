@@ -110,7 +110,7 @@ TEST_CASE("explain: and so it is of 200", "[explain][.long]") {
     constexpr std::uint64_t seed = 20261204;
     const Totals totals = infer_all(seed, 200);
     std::printf(
-        "undeclared arithmetics of one stage inferred from 13 stimuli that return the same bits to others | 190 of 200 "
+        "undeclared arithmetics of one stage inferred from 9 stimuli that return the same bits to others | 190 of 200 "
         "| "
         "%d of %d, %d reproduce the captures; seed %llu\n",
         totals.same, totals.boards, totals.inferred, static_cast<unsigned long long>(seed));
