@@ -70,9 +70,7 @@ private:
         if (!folder) return folder.error();
         if (auto read = read_back(*folder); !read) return read.error();
         std::vector<AskedRun> asked = std::move(explanation.asked);
-        asked.push_back({*folder, {}});
-        for (std::size_t i = 0; i < questions.size(); ++i)
-            asked.back().questions.push_back(answer_to(questions, i, explanation));
+        asked.push_back({*folder, answers_to(questions, explanation)});
         auto again = explain();
         if (!again) return again.error();
         explanation = std::move(*again);
@@ -191,34 +189,30 @@ private:
         return {};
     }
 
-    /// Which of the causes before the round say that something else should have come back.
-    AskedQuestion answer_to(const std::vector<Probe>& questions, std::size_t place, const Explanation& before) const {
-        AskedQuestion question{name_of_question(place, questions[place]), questions[place].what, {}, 0};
-        const OpenedCaptures& answered = answered_.back();
+    /// Which of the causes before the round say that something else should have come back, question by question.
+    std::vector<AskedQuestion> answers_to(const std::vector<Probe>& questions, const Explanation& before) const {
+        std::vector<AskedQuestion> answers;
+        for (std::size_t i = 0; i < questions.size(); ++i)
+            answers.push_back({name_of_question(i, questions[i]), questions[i].what, {}, 0});
         for (const ExplainedChannels& one : before.channels) {
             if (!is_in_doubt(one)) continue;
-            const auto fits = causes_that_fit(answered, one, place);
-            const auto fitted =
-                place == 0 ? std::vector<bool>(fits.size(), true) : causes_that_fit(answered, one, place - 1);
-            for (std::size_t i = 0; i < fits.size(); ++i) {
-                if (fits[i]) ++question.left;
-                if (fitted[i] && !fits[i]) {
-                    const Candidate& first = one.finding.search.classes[i].members.front();
-                    question.ruled_out.push_back({one.channels, first.hypothesis.what()});
+            const auto captures = channel_captures(answered_.back().part(), files_, one.channels.front());
+            if (!captures) continue;
+            for (const EquivalenceClass& cause : one.finding.search.classes) {
+                const Hypothesis& first = cause.members.front().hypothesis;
+                for (std::size_t i = 0; i < std::min(answers.size(), captures->size()); ++i) {
+                    const std::vector<ChannelCapture> until(captures->begin(),
+                                                            captures->begin() + static_cast<std::ptrdiff_t>(i) + 1);
+                    if (CaptureSet(signal_, until).until_first_wrong(first.board).is_exact()) {
+                        ++answers[i].left;
+                        continue;
+                    }
+                    answers[i].ruled_out.push_back({one.channels, first.what()});
+                    break;
                 }
             }
         }
-        return question;
-    }
-
-    /// To all answers up to that of `place`.
-    std::vector<bool> causes_that_fit(const OpenedCaptures& answered, const ExplainedChannels& one,
-                                      std::size_t place) const {
-        std::vector<bool> fits;
-        const auto captures = channel_captures(answered.part(), files_, one.channels.front(), place + 1);
-        for (const BoardDescription& board : boards_of(one))
-            fits.push_back(captures && CaptureSet(signal_, *captures).until_first_wrong(board).is_exact());
-        return fits;
+        return answers;
     }
 
     const AskRequest& request_;

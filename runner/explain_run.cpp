@@ -197,14 +197,10 @@ Outcome<Explanation> explain_runs(const std::vector<RunPart>& parts, const Files
     return explanation;
 }
 
-Outcome<std::vector<ChannelCapture>> channel_captures(const RunPart& part, const Files& files, int channel,
-                                                      std::size_t cases) {
+Outcome<std::vector<ChannelCapture>> channel_captures(const RunPart& part, const Files& files, int channel) {
     Gathering gathering(part.plan.signal.channels, files, {});
     if (auto added = gathering.add(part); !added) return added.error();
-    std::vector<ChannelCapture> captures =
-        std::move(gathering.channels()[static_cast<std::size_t>(channel) - 1].captures);
-    captures.resize(std::min(captures.size(), cases));
-    return captures;
+    return std::move(gathering.channels()[static_cast<std::size_t>(channel) - 1].captures);
 }
 
 }  // namespace halflsb

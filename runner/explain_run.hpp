@@ -34,8 +34,7 @@ Outcome<Explanation> explain_runs(const std::vector<RunPart>& parts, const Files
                                   const std::function<bool(int channel)>& go_on, const ExplainedLength& length = {},
                                   const StartBoards* begin_with = nullptr);
 
-/// What a channel (from 1) got and returned in the first `cases` cases of a run.
-Outcome<std::vector<ChannelCapture>> channel_captures(const RunPart& part, const Files& files, int channel,
-                                                      std::size_t cases);
+/// What a channel (from 1) got and returned in a run.
+Outcome<std::vector<ChannelCapture>> channel_captures(const RunPart& part, const Files& files, int channel);
 
 }  // namespace halflsb

@@ -14,8 +14,8 @@ namespace halflsb {
 namespace {
 
 constexpr double bits_above = 64.0;  // 6 bits: the noise must spread over that many of the steps kept, or had
-/// A remainder is independent of the one before where what is dropped moves by half a step between two samples (rms): of
-/// a normal move they correlate by exp(-2 pi^2 / 4) = 0.7 %. A slow pole in a direct form moves it by less: its
+/// A remainder is independent of the one before where what is dropped moves by half a step between two samples (rms):
+/// of a normal move they correlate by exp(-2 pi^2 / 4) = 0.7 %. A slow pole in a direct form moves it by less: its
 /// coefficients are nearly whole, and the loop has a dead band.
 constexpr double least_move_steps = 0.5;
 constexpr double one_sign = 1e-9;      // of sum |h|: a path with less of the other sign has but one
@@ -34,6 +34,11 @@ double power_of_row(const std::vector<double>& autocorrelation, int count) {
 
 double product(double factor, double amount) { return factor == 0.0 || amount == 0.0 ? 0.0 : factor * amount; }
 
+/// Of white noise of rms 1 at its start; 0 where nobody knows.
+double rms_gain(const FilterChain& path) {
+    return is_linear(path) && !changes_rate(path) ? l2_norm(path) : 0.0;
+}
+
 /// A point with what does not hang on the stimulus.
 struct KnownPoint {
     RoundingPoint point;
@@ -49,18 +54,12 @@ struct KnownPoint {
 
     bool moves(double input_rms) {
         if (point.remainder.empty()) return true;
-        if (!move_per_rms) {
-            const bool is_known = is_linear(point.remainder) && !changes_rate(point.remainder);
-            move_per_rms = is_known ? std::sqrt(noise_power_gain(point.remainder)) : 0.0;
-        }
+        if (!move_per_rms) move_per_rms = rms_gain(point.remainder);
         return input_rms * *move_per_rms >= least_move_steps * point.step;
     }
 
     double level(double input_rms) {
-        if (!level_per_rms) {
-            const bool is_known = is_linear(point.from_input) && !changes_rate(point.from_input);
-            level_per_rms = is_known ? std::sqrt(noise_power_gain(point.from_input)) * point.factor : 0.0;
-        }
+        if (!level_per_rms) level_per_rms = rms_gain(point.from_input) * point.factor;
         return input_rms * *level_per_rms;
     }
 };

@@ -36,9 +36,8 @@ FilterStage signal_of_state(const SectionCoefficients& s, std::size_t k, std::si
 }
 
 /// Of a direct form whose sum keeps `step_bits` of fraction: what the sum moves by from one sample to the next, without
-/// whole steps. `fed_back` is the word that a1, a2 ... multiply; what is fed back is B / A of the section's input, or 1
-/// / A
-/// (`is_state`), where the forward products come later.
+/// whole steps. `fed_back` is the word that a1, a2 ... multiply; what is fed back is B / A of the section's input, or
+/// 1 / A (`is_state`), where the forward products come later.
 FilterStage moving_sum(const SectionCoefficients& s, const Word& in, const Word& fed_back, int step_bits,
                        bool is_state) {
     std::vector<double> a{1.0};

@@ -5,34 +5,12 @@
 
 #include "oracle/explain/probes.hpp"
 #include "tests/oracle/explain/small_boards.hpp"
+#include "tests/oracle/explain/small_plans.hpp"
 
 using namespace halflsb;
 using namespace halflsb::test;
 
 namespace {
-
-const std::array<double, 5> low_pass{0.00362168, 0.00724336, 0.00362168, -1.82269493,
-                                     0.83718165};  // 2nd order, 0.02 fs
-const std::vector<double> slanted{0.02, -0.05, 0.11, 0.31, 0.4, 0.17, -0.06, 0.03, 0.013};
-
-Signal q15_signal() {
-    Signal signal;
-    signal.rate_hz = 1200.0;
-    signal.input = *sample_format("q15");
-    signal.output = signal.input;
-    return signal;
-}
-
-FilterStage declared(FilterDesign design, std::string kind, std::optional<int> fraction_bits) {
-    FilterStage stage;
-    stage.design = std::move(design);
-    stage.kind = std::move(kind);
-    stage.coefficient_fraction_bits = fraction_bits;
-    stage.arithmetic.coefficient_fraction_bits = fraction_bits;
-    stage.arithmetic.rounding = Rounding::half_up;
-    stage.arithmetic.accumulator_bits = 64;
-    return stage;
-}
 
 struct Bench {
     FilterStage stage;
